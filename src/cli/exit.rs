@@ -1,0 +1,47 @@
+//! Exit codes: the same for every command, so that scripts can rely on them.
+
+use std::process::ExitCode;
+
+/// How a command ended.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Exit {
+    /// Done; problems found in the data are reported and are still "done".
+    Done,
+    /// The command line makes no sense.
+    Usage,
+    /// Some of many inputs failed, each named on standard error.
+    SomeFailed,
+    /// Nothing could be done: an input or output error.
+    Failed,
+}
+
+impl From<Exit> for ExitCode {
+    fn from(exit: Exit) -> ExitCode {
+        ExitCode::from(match exit {
+            Exit::Done => 0,
+            Exit::Usage => 2,
+            Exit::SomeFailed => 3,
+            Exit::Failed => 4,
+        })
+    }
+}
+
+/// An error that is the fault of the command line rather than of a file.
+#[derive(Debug, thiserror::Error)]
+#[error("{0}")]
+pub struct UsageError(pub String);
+
+/// The exit code that belongs to an error.
+pub fn of_error(error: &anyhow::Error) -> Exit {
+    if error.downcast_ref::<UsageError>().is_some() { Exit::Usage } else { Exit::Failed }
+}
+
+/// A reader of our output that has gone away (`| head`) ends the program silently.
+pub fn quiet_end(error: &anyhow::Error) -> Option<Exit> {
+    let gone = error.chain().any(|cause| {
+        cause
+            .downcast_ref::<std::io::Error>()
+            .is_some_and(|error| error.kind() == std::io::ErrorKind::BrokenPipe)
+    });
+    gone.then_some(Exit::Done)
+}

@@ -1,0 +1,92 @@
+//! The command line: arguments, one file per command, exit codes, all printing.
+//!
+//! Uses: every room.
+//!
+//! **Never** judges.
+
+// Printing is this room's job; nobody else may.
+#![allow(clippy::print_stdout, clippy::print_stderr)]
+
+mod describe;
+mod exit;
+mod export;
+mod planck;
+mod reader;
+mod review;
+mod spectrum;
+mod synth;
+mod tabulate;
+
+use std::process::ExitCode;
+
+use clap::{Parser, Subcommand};
+
+pub use exit::Exit;
+
+/// Screen infrared-sounder granules: look at spectra, flag footprints, export CF flag masks.
+///
+/// A mask made here is a screening aid for retrieval runs, not a warning service. Decisions on
+/// ash, dust or gas for aviation, health or civil protection belong to the responsible authorities.
+#[derive(Debug, Parser)]
+#[command(name = "radsieve", version, max_term_width = 100)]
+pub struct Arguments {
+    #[command(subcommand)]
+    command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+enum Command {
+    /// The terminal review: page through granules, look, flag, sign off.
+    Review(review::Arguments),
+    /// What was understood of a file, what was guessed and why.
+    Describe(describe::Arguments),
+    /// Layers per footprint as CSV or JSON lines.
+    Tabulate(tabulate::Arguments),
+    /// One footprint's spectrum as CSV or JSON.
+    Spectrum(spectrum::Arguments),
+    /// Write CF flag masks or footprint lists from the ledgers.
+    Export(export::Arguments),
+    /// Convert radiance to brightness temperature and back, at the prompt.
+    Planck(planck::Arguments),
+    /// Make physically based synthetic granules with their truth.
+    Synth(synth::Arguments),
+    /// The reader process: started by the program itself.
+    #[command(hide = true, name = reader::NAME)]
+    Reader(reader::Arguments),
+}
+
+/// Parses the command line, runs the command, reports a failure on standard error.
+pub fn main() -> ExitCode {
+    let arguments = match Arguments::try_parse() {
+        Ok(arguments) => arguments,
+        Err(error) => {
+            let wrong_usage = error.use_stderr();
+            // Nothing sensible is left to do when standard error is gone.
+            let _ = error.print();
+            return if wrong_usage { Exit::Usage.into() } else { Exit::Done.into() };
+        }
+    };
+    match run(arguments.command) {
+        Ok(exit) => exit.into(),
+        Err(error) => {
+            if let Some(broken_pipe) = exit::quiet_end(&error) {
+                return broken_pipe.into();
+            }
+            eprintln!("radsieve: {error:#}");
+            exit::of_error(&error).into()
+        }
+    }
+}
+
+fn run(command: Command) -> anyhow::Result<Exit> {
+    match command {
+        Command::Review(arguments) => review::run(arguments),
+        Command::Describe(arguments) => describe::run(arguments),
+        Command::Tabulate(arguments) => tabulate::run(arguments),
+        Command::Spectrum(arguments) => spectrum::run(arguments),
+        Command::Export(arguments) => export::run(arguments),
+        Command::Planck(arguments) => planck::run(arguments),
+        Command::Synth(arguments) => synth::run(arguments),
+        Command::Reader(arguments) => reader::run(arguments),
+    }
+}

@@ -1,0 +1,1 @@
+//! House rules: who uses whom, one table per fact, documents in step.

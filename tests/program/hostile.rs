@@ -1,0 +1,1 @@
+//! `hostile` from outside.

@@ -1,0 +1,1 @@
+//! The terminal from outside: a pseudo-terminal, keys, expected screens.
