@@ -10,6 +10,7 @@
 mod describe;
 mod exit;
 mod export;
+mod manual;
 mod planck;
 mod reader;
 mod review;
@@ -50,6 +51,10 @@ enum Command {
     Planck(planck::Arguments),
     /// Make physically based synthetic granules with their truth.
     Synth(synth::Arguments),
+    /// Write a completion script for a shell to standard output.
+    Completions(manual::CompletionArguments),
+    /// Write manual pages into a folder.
+    Man(manual::ManArguments),
     /// The reader process: started by the program itself.
     #[command(hide = true, name = reader::NAME)]
     Reader(reader::Arguments),
@@ -87,6 +92,8 @@ fn run(command: Command) -> anyhow::Result<Exit> {
         Command::Export(arguments) => export::run(arguments),
         Command::Planck(arguments) => planck::run(arguments),
         Command::Synth(arguments) => synth::run(arguments),
+        Command::Completions(arguments) => manual::completions(arguments),
+        Command::Man(arguments) => manual::man(arguments),
         Command::Reader(arguments) => reader::run(arguments),
     }
 }

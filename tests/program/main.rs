@@ -1,8 +1,11 @@
 //! The program from outside: commands, exit codes, output; one module per command.
 
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic)]
+
 mod describe;
 mod export;
 mod hostile;
+mod manual;
 mod planck;
 mod samples;
 mod spectrum;
