@@ -3,3 +3,12 @@
 //! Uses: `system`.
 //!
 //! **Never** knows what a radiance is.
+
+mod attribute;
+mod library_types;
+mod samples;
+mod writer;
+
+pub use attribute::{Attribute, AttributeValue};
+pub use samples::{Samples, ValueKind};
+pub use writer::{FileFormat, NetcdfWriter, VariableDraft, WriterError};

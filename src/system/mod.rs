@@ -3,3 +3,17 @@
 //! Uses: no other room.
 //!
 //! **Never** knows what a granule is.
+
+mod cancel;
+mod clean_text;
+mod cores;
+mod deadline;
+mod unchanged;
+mod whole_file;
+
+pub use cancel::Cancel;
+pub use clean_text::clean_text;
+pub use cores::cores;
+pub use deadline::Deadline;
+pub use unchanged::FileStamp;
+pub use whole_file::{WriteError, write_whole};

@@ -1,0 +1,147 @@
+//! Files that appear whole or not at all.
+
+use std::fs::{File, Permissions};
+use std::io;
+use std::os::unix::fs::PermissionsExt;
+use std::path::{Path, PathBuf};
+
+/// Why a file was not written. Whatever stood at the target before stands there still.
+#[derive(Debug, thiserror::Error)]
+pub enum WriteError<E> {
+    /// The folder does not let us make a file.
+    #[error("cannot make a file in {}: {source}", folder.display())]
+    Create {
+        /// The folder of the target.
+        folder: PathBuf,
+        /// What the system said.
+        source: io::Error,
+    },
+    /// The content could not be written.
+    #[error("cannot write {}: {source}", target.display())]
+    Content {
+        /// The file that was to be written.
+        target: PathBuf,
+        /// What the writer said.
+        source: E,
+    },
+    /// The content could not be written, and the file system has no space left.
+    #[error(
+        "cannot write {}: its file system is full ({free} bytes free); make room and run the command again",
+        target.display()
+    )]
+    Full {
+        /// The file that was to be written.
+        target: PathBuf,
+        /// Bytes that were free when the writing failed.
+        free: u64,
+        /// What the writer said.
+        source: E,
+    },
+    /// The content was written, but could not be made permanent under its name.
+    #[error("cannot put {} in its place: {source}", target.display())]
+    Place {
+        /// The file that was to be written.
+        target: PathBuf,
+        /// What the system said.
+        source: io::Error,
+    },
+}
+
+/// Writes `target` through a temporary name in the same folder.
+///
+/// `write` gets the temporary path, where an empty file stands already; it writes and closes the
+/// file. Then the file is synced, renamed over `target`, and the folder is synced. The mode is 0666
+/// less the umask, so that a group's folder stays usable by the group. A failure leaves no file.
+pub fn write_whole<E>(
+    target: &Path,
+    write: impl FnOnce(&Path) -> Result<(), E>,
+) -> Result<(), WriteError<E>> {
+    let folder = folder_of(target);
+    let temporary = tempfile::Builder::new()
+        .prefix(".radsieve-")
+        .suffix(".part")
+        .permissions(Permissions::from_mode(0o666))
+        .tempfile_in(folder)
+        .map_err(|source| WriteError::Create { folder: folder.to_owned(), source })?;
+    write(temporary.path()).map_err(|source| content_error(target, folder, source))?;
+    let place = |source| WriteError::Place { target: target.to_owned(), source };
+    // The writer may have made the file anew, so it is opened by name to be synced.
+    File::open(temporary.path()).and_then(|file| file.sync_all()).map_err(place)?;
+    temporary.persist(target).map_err(|error| place(error.error))?;
+    sync_folder(folder).map_err(place)
+}
+
+fn folder_of(target: &Path) -> &Path {
+    match target.parent() {
+        Some(folder) if !folder.as_os_str().is_empty() => folder,
+        _ => Path::new("."),
+    }
+}
+
+/// Libraries call a full disk all sorts of things ("Permission denied" among them), so we look.
+fn content_error<E>(target: &Path, folder: &Path, source: E) -> WriteError<E> {
+    const AS_GOOD_AS_FULL: u64 = 64 * 1024;
+    let target = target.to_owned();
+    match rustix::fs::statvfs(folder).map(|state| state.f_bavail.saturating_mul(state.f_frsize)) {
+        Ok(free) if free < AS_GOOD_AS_FULL => WriteError::Full { target, free, source },
+        _ => WriteError::Content { target, source },
+    }
+}
+
+fn sync_folder(folder: &Path) -> io::Result<()> {
+    match File::open(folder)?.sync_all() {
+        // Some network file systems cannot sync a folder; the rename stands all the same.
+        Err(error) if error.kind() == io::ErrorKind::InvalidInput => Ok(()),
+        result => result,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn names(folder: &Path) -> Vec<String> {
+        let entries = std::fs::read_dir(folder).unwrap();
+        entries.map(|entry| entry.unwrap().file_name().into_string().unwrap()).collect()
+    }
+
+    #[test]
+    fn the_file_appears_whole_and_alone() {
+        let folder = tempfile::tempdir().unwrap();
+        let target = folder.path().join("mask.nc");
+        write_whole(&target, |path| std::fs::write(path, b"content")).unwrap();
+        assert_eq!(std::fs::read(&target).unwrap(), b"content");
+        assert_eq!(names(folder.path()), ["mask.nc"]);
+    }
+
+    #[test]
+    fn a_failure_leaves_what_was_there_and_nothing_else() {
+        let folder = tempfile::tempdir().unwrap();
+        let target = folder.path().join("mask.nc");
+        std::fs::write(&target, b"before").unwrap();
+        let result = write_whole(&target, |path| {
+            std::fs::write(path, b"half").unwrap();
+            Err::<(), _>(io::Error::other("the writer gave up"))
+        });
+        assert!(result.unwrap_err().to_string().contains("the writer gave up"));
+        assert_eq!(std::fs::read(&target).unwrap(), b"before");
+        assert_eq!(names(folder.path()), ["mask.nc"]);
+    }
+
+    #[test]
+    fn the_mode_is_what_an_ordinary_new_file_has() {
+        let folder = tempfile::tempdir().unwrap();
+        let ordinary = folder.path().join("ordinary");
+        let target = folder.path().join("target");
+        std::fs::write(&ordinary, b"").unwrap();
+        write_whole(&target, |path| std::fs::write(path, b"")).unwrap();
+        let mode = |path: &Path| std::fs::metadata(path).unwrap().permissions().mode();
+        assert_eq!(mode(&target), mode(&ordinary));
+    }
+
+    #[test]
+    fn a_missing_folder_is_named() {
+        let error = write_whole(Path::new("/no/such/folder/mask.nc"), |_| Ok::<(), io::Error>(()));
+        assert!(error.unwrap_err().to_string().contains("/no/such/folder"));
+    }
+}
