@@ -1,0 +1,18 @@
+//! The panes and what is laid over them. Each is drawn from plain view data by a function
+//! `draw(&view, &theme, area, buffer)`, so that it can be tested without a granule.
+//!
+//! **Never** reads a file, keeps state or changes what it draws from.
+
+pub mod command;
+pub mod evidence;
+pub mod field;
+pub mod help;
+pub mod messages;
+pub mod prompt;
+pub mod status;
+pub mod trace;
+pub mod tray;
+
+mod layout;
+
+pub use layout::{Pane, SMALLEST, ScreenLayout, draw_too_small};

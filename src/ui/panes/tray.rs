@@ -1,0 +1,53 @@
+//! The Tray: the granules in hand, each with its state and its shares.
+
+/// Everything the Tray shows.
+#[derive(Clone, Debug)]
+pub struct TrayView<'a> {
+    /// The granules, in order.
+    pub rows: &'a [TrayRow],
+    /// The granule on the table.
+    pub current: usize,
+    /// The row under the Tray's own cursor.
+    pub cursor: usize,
+    /// Whether the keys go to this pane.
+    pub focused: bool,
+}
+
+/// One granule of the Tray.
+#[derive(Clone, Debug, PartialEq)]
+pub struct TrayRow {
+    /// How far its review has come.
+    pub state: TrayState,
+    /// The file's name, cleaned.
+    pub name: String,
+    /// Its shares, once they are known.
+    pub shares: Option<TrayShares>,
+}
+
+/// How far the review of a granule has come.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum TrayState {
+    /// Nobody has decided anything.
+    Untouched,
+    /// Decisions exist.
+    InHand,
+    /// Done.
+    SignedOff,
+    /// Put aside with a reason.
+    SetAside,
+    /// Being opened.
+    Opening,
+    /// The file can't be used.
+    Unusable,
+}
+
+/// Shares of a granule's footprints; they need not add up to one.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct TrayShares {
+    /// Share with any flag, 0 to 1.
+    pub flagged: f64,
+    /// Share looked at and without a flag, 0 to 1.
+    pub no_flag: f64,
+    /// Share that nobody and nothing has assessed, 0 to 1.
+    pub not_assessed: f64,
+}

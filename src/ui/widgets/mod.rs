@@ -1,0 +1,3 @@
+//! Small drawing helpers that several panes share.
+//!
+//! **Never** knows what a pane shows.
