@@ -1,0 +1,381 @@
+//! The `:` command line: what was typed, understood; and what could be typed next.
+
+use super::keys::{self, Action, BINDINGS};
+
+/// A command with its words.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Command {
+    /// A named action that needs no words.
+    Action(Action),
+    /// Show this layer.
+    Layer(String),
+    /// Take the channel nearest to a wavenumber (cm-1) in hand.
+    Go(f64),
+    /// Flag the selection, with a reason if there is one.
+    Flag(String, Option<String>),
+    /// Withdraw a flag from the selection, with a reason if there is one.
+    Withdraw(String, Option<String>),
+    /// Select all footprints on one side of a value of the layer.
+    Side(Side),
+    /// The colour range, in the layer's unit; none for percentiles again.
+    Range(Option<(f64, f64)>),
+    /// Set the granule aside, with the reason.
+    Aside(String),
+    /// A remark on the selection.
+    Comment(String),
+    /// Export the mask into a folder, or where the campaign keeps its exports.
+    Export(Option<String>),
+}
+
+/// One side of a value, the value itself left out or taken in as typed.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Side {
+    /// Which side.
+    pub relation: Relation,
+    /// The value, in the layer's unit.
+    pub value: f64,
+}
+
+/// How a footprint's value has to stand to the side's.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Relation {
+    /// `<`
+    Below,
+    /// `<=`
+    UpTo,
+    /// `>`
+    Above,
+    /// `>=`
+    From,
+}
+
+impl Relation {
+    /// As it is typed.
+    pub fn symbol(self) -> &'static str {
+        match self {
+            Relation::Below => "<",
+            Relation::UpTo => "<=",
+            Relation::Above => ">",
+            Relation::From => ">=",
+        }
+    }
+
+    /// The other side.
+    pub fn opposite(self) -> Relation {
+        match self {
+            Relation::Below => Relation::From,
+            Relation::UpTo => Relation::Above,
+            Relation::Above => Relation::UpTo,
+            Relation::From => Relation::Below,
+        }
+    }
+}
+
+impl Side {
+    /// `< 230`, `>=1.5`.
+    ///
+    /// # Errors
+    /// A message that shows the form.
+    pub fn parse(text: &str) -> Result<Side, String> {
+        let text = text.trim();
+        let (relation, rest) = [
+            ("<=", Relation::UpTo),
+            ("<", Relation::Below),
+            (">=", Relation::From),
+            (">", Relation::Above),
+        ]
+        .into_iter()
+        .find_map(|(symbol, relation)| Some((relation, text.strip_prefix(symbol)?)))
+        .ok_or("begin with < or > and a value, as in < 230")?;
+        Ok(Side { relation, value: number(rest)? })
+    }
+
+    /// Whether a value lies on this side; a missing value never does.
+    pub fn holds(&self, value: f64) -> bool {
+        match self.relation {
+            Relation::Below => value < self.value,
+            Relation::UpTo => value <= self.value,
+            Relation::Above => value > self.value,
+            Relation::From => value >= self.value,
+        }
+    }
+}
+
+/// A command that takes words.
+struct Worded {
+    name: &'static str,
+    words: &'static str,
+    help: &'static str,
+    parse: fn(&str) -> Result<Command, String>,
+}
+
+const WORDED: &[Worded] = &[
+    Worded {
+        name: "layer",
+        words: "EXPR",
+        help: "show a layer, as in layer bt(900)",
+        parse: layer,
+    },
+    Worded {
+        name: "go",
+        words: "CHANNEL",
+        help: "channel at a wavenumber or length, as in go 900 or go 11um",
+        parse: go,
+    },
+    Worded { name: "flag", words: "NAME [WHY]", help: "flag the selection", parse: flag },
+    Worded {
+        name: "withdraw",
+        words: "NAME [WHY]",
+        help: "withdraw a flag from the selection",
+        parse: withdraw,
+    },
+    Worded {
+        name: "side",
+        words: "< VALUE",
+        help: "select all on one side of a value of the layer",
+        parse: |words| Side::parse(words).map(Command::Side),
+    },
+    Worded {
+        name: "range",
+        words: "[LOW HIGH]",
+        help: "colour range; without words by percentiles",
+        parse: range,
+    },
+    Worded {
+        name: "aside",
+        words: "WHY",
+        help: "set the granule aside",
+        parse: |words| sentence(words, "the reason").map(Command::Aside),
+    },
+    Worded {
+        name: "comment",
+        words: "TEXT",
+        help: "write down a remark on the selection",
+        parse: |words| sentence(words, "the remark").map(Command::Comment),
+    },
+    Worded { name: "export", words: "[FOLDER]", help: "export the flag mask", parse: export },
+];
+
+/// Understands a line.
+///
+/// # Errors
+/// A message for the status line: what is wrong and what would be right.
+pub fn parse(line: &str) -> Result<Command, String> {
+    let line = line.trim();
+    let (name, words) = line.split_once(char::is_whitespace).unwrap_or((line, ""));
+    let words = words.trim();
+    if let Some(worded) = WORDED.iter().find(|worded| worded.name == name) {
+        return (worded.parse)(words);
+    }
+    let name = if name == "q" { "quit" } else { name };
+    match keys::action_named(name) {
+        Some(_) if !words.is_empty() => Err(format!("{name} takes no further words")),
+        Some(action) => Ok(Command::Action(action)),
+        None => Err(unknown(name)),
+    }
+}
+
+fn unknown(name: &str) -> String {
+    let near: Vec<&str> = names().filter(|known| is_near(name, known)).take(4).collect();
+    if near.is_empty() {
+        format!("no command {name}; Tab lists them")
+    } else {
+        format!("no command {name}; near it: {}", near.join(", "))
+    }
+}
+
+fn is_near(typed: &str, known: &str) -> bool {
+    let start: String = typed.chars().take(3).collect();
+    !start.is_empty() && known.contains(&start)
+}
+
+fn number(text: &str) -> Result<f64, String> {
+    match text.trim().parse::<f64>() {
+        Ok(number) if number.is_finite() => Ok(number),
+        _ => Err(format!("{} is no number", text.trim())),
+    }
+}
+
+fn sentence(words: &str, what: &str) -> Result<String, String> {
+    if words.is_empty() { Err(format!("{what} is missing")) } else { Ok(words.to_owned()) }
+}
+
+fn layer(words: &str) -> Result<Command, String> {
+    sentence(words, "an expression such as bt(900)").map(Command::Layer)
+}
+
+fn go(words: &str) -> Result<Command, String> {
+    let lower = words.to_lowercase();
+    let length = ["um", "µm", "μm"].into_iter().find_map(|unit| lower.strip_suffix(unit));
+    let wavenumber = match length {
+        // A length in micrometres: 1 cm is 10 000 of them.
+        Some(length) => 1e4 / number(length)?,
+        None => number(lower.trim_end_matches("cm-1"))?,
+    };
+    if wavenumber.is_finite() && wavenumber > 0.0 {
+        Ok(Command::Go(wavenumber))
+    } else {
+        Err("a wavenumber or length is above zero".to_owned())
+    }
+}
+
+fn name_and_reason(words: &str) -> Result<(String, Option<String>), String> {
+    let (name, why) = words.split_once(char::is_whitespace).unwrap_or((words, ""));
+    let name = sentence(name, "the flag's name")?;
+    let why = why.trim();
+    Ok((name, (!why.is_empty()).then(|| why.to_owned())))
+}
+
+fn flag(words: &str) -> Result<Command, String> {
+    name_and_reason(words).map(|(name, why)| Command::Flag(name, why))
+}
+
+fn withdraw(words: &str) -> Result<Command, String> {
+    name_and_reason(words).map(|(name, why)| Command::Withdraw(name, why))
+}
+
+fn range(words: &str) -> Result<Command, String> {
+    if words.is_empty() {
+        return Ok(Command::Range(None));
+    }
+    let (low, high) = words.split_once(char::is_whitespace).ok_or("two values, low and high")?;
+    let (low, high) = (number(low)?, number(high)?);
+    if low < high {
+        Ok(Command::Range(Some((low, high))))
+    } else {
+        Err("the low end comes first".to_owned())
+    }
+}
+
+fn export(words: &str) -> Result<Command, String> {
+    Ok(Command::Export((!words.is_empty()).then(|| words.to_owned())))
+}
+
+fn names() -> impl Iterator<Item = &'static str> {
+    let worded = WORDED.iter().map(|worded| worded.name);
+    // `export` stands in both tables: with a folder and without.
+    let plain = BINDINGS.iter().map(|binding| binding.name).filter(|name| *name != "export");
+    worded.chain(plain)
+}
+
+/// The commands that take words, for the help: (how it is typed, what it does).
+pub fn worded_help() -> impl Iterator<Item = (String, &'static str)> {
+    WORDED.iter().map(|worded| (format!("{} {}", worded.name, worded.words), worded.help))
+}
+
+/// What the words of a command can be completed from.
+#[derive(Debug, Clone, Default)]
+pub struct Known {
+    /// Layer expressions.
+    pub layers: Vec<String>,
+    /// Flag names.
+    pub flags: Vec<String>,
+}
+
+/// All whole lines that begin with what stands before the cursor, in a fixed order.
+pub fn completions(before_cursor: &str, known: &Known) -> Vec<String> {
+    let typed = before_cursor.trim_start();
+    match typed.split_once(char::is_whitespace) {
+        None => {
+            let mut names: Vec<String> = names()
+                .filter(|name| name.starts_with(typed))
+                .map(|name| {
+                    let takes_words = WORDED.iter().any(|worded| worded.name == name);
+                    if takes_words { format!("{name} ") } else { name.to_owned() }
+                })
+                .collect();
+            names.sort();
+            names
+        }
+        Some((name, words)) => {
+            let candidates = match name {
+                "layer" => &known.layers,
+                "flag" | "withdraw" => &known.flags,
+                _ => return Vec::new(),
+            };
+            let words = words.trim_start();
+            let matching = candidates.iter().filter(|candidate| candidate.starts_with(words));
+            matching.map(|candidate| format!("{name} {candidate}")).collect()
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn lines_are_understood() {
+        for (line, expected) in [
+            ("undo", Command::Action(Action::Undo)),
+            (" q ", Command::Action(Action::Quit)),
+            ("layer bt(900) - bt(831)", Command::Layer("bt(900) - bt(831)".to_owned())),
+            ("go 900.5", Command::Go(900.5)),
+            ("go 10um", Command::Go(1000.0)),
+            ("flag cloudy", Command::Flag("cloudy".to_owned(), None)),
+            ("flag so2 plume edge", Command::Flag("so2".into(), Some("plume edge".into()))),
+            ("range 200 300", Command::Range(Some((200.0, 300.0)))),
+            ("range", Command::Range(None)),
+            ("side <=230", Command::Side(Side { relation: Relation::UpTo, value: 230.0 })),
+            ("aside half of it is missing", Command::Aside("half of it is missing".to_owned())),
+            ("export masks", Command::Export(Some("masks".to_owned()))),
+        ] {
+            assert_eq!(parse(line), Ok(expected), "{line}");
+        }
+    }
+
+    #[test]
+    fn what_makes_no_sense_says_so() {
+        for (line, part) in [
+            ("undoo", "near it: undo"),
+            ("undo twice", "no further words"),
+            ("layer", "expression"),
+            ("go -3", "above zero"),
+            ("go soon", "no number"),
+            ("side 230", "< or >"),
+            ("range 300 200", "comes first"),
+            ("", "no command"),
+        ] {
+            let message = parse(line).unwrap_err();
+            assert!(message.contains(part), "{line}: {message}");
+        }
+    }
+
+    #[test]
+    fn every_action_is_a_command() {
+        for binding in BINDINGS {
+            let parsed = parse(binding.name).unwrap();
+            let expected = match binding.action {
+                Action::Export => Command::Export(None),
+                action => Command::Action(action),
+            };
+            assert_eq!(parsed, expected);
+        }
+    }
+
+    #[test]
+    fn completion_offers_names_then_words() {
+        let known = Known {
+            layers: vec!["bt(900)".to_owned(), "lat".to_owned()],
+            flags: vec!["cloudy".to_owned()],
+        };
+        assert_eq!(completions("und", &known), ["undo"]);
+        assert_eq!(completions("lay", &known), ["layer "]);
+        assert_eq!(completions("layer ", &known), ["layer bt(900)", "layer lat"]);
+        assert_eq!(completions("layer l", &known), ["layer lat"]);
+        assert_eq!(completions("flag c", &known), ["flag cloudy"]);
+        assert!(completions("undo ", &known).is_empty());
+    }
+
+    #[test]
+    fn a_missing_value_lies_on_no_side() {
+        for relation in [Relation::Below, Relation::UpTo, Relation::Above, Relation::From] {
+            let side = Side { relation, value: 1.0 };
+            assert!(!side.holds(f64::NAN));
+            assert_ne!(
+                side.holds(1.0),
+                Side { relation: relation.opposite(), value: 1.0 }.holds(1.0)
+            );
+        }
+    }
+}

@@ -1,0 +1,66 @@
+//! Everything that can happen to the screen, in one list.
+
+use super::key::Key;
+
+/// One event for `update`.
+#[derive(Debug)]
+pub enum Event {
+    /// The person did something.
+    Input(Input),
+    /// The terminal changed its size; drawing asks for the new one.
+    Resized,
+    /// The screen was given back and taken again: everything is drawn anew.
+    Resumed,
+    /// The ledger's writer may have reported.
+    LedgerMoved,
+    /// Stop to the shell, as Ctrl-Z asks for.
+    Suspend,
+    /// The program has to end now.
+    End(Ending),
+}
+
+/// What a person does.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub enum Input {
+    /// A key.
+    Key(Key),
+    /// Text pasted in one piece.
+    Paste(String),
+    /// The mouse.
+    Mouse(Mouse),
+}
+
+/// A mouse report.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Mouse {
+    /// What the mouse did.
+    pub button: Button,
+    /// Column on the screen, from 0.
+    pub column: u16,
+    /// Row on the screen, from 0.
+    pub row: u16,
+}
+
+/// What the mouse did.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Button {
+    /// The left button went down.
+    Press,
+    /// Moved with the left button down.
+    Drag,
+    /// The left button came up.
+    Release,
+    /// The wheel turned away from the hand.
+    WheelUp,
+    /// The wheel turned towards the hand.
+    WheelDown,
+}
+
+/// Why the program has to end at once.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Ending {
+    /// A signal of this number.
+    Signal(i32),
+    /// The terminal went away without a signal.
+    TerminalGone,
+}

@@ -1,0 +1,253 @@
+//! The keys, in one table: it feeds dispatch, the help screen and `docs/keys.md`.
+
+use super::key::{Code, Key};
+
+/// What a key or a command does without further words.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+#[expect(missing_docs, reason = "the table below says what each does, in the words of the help")]
+pub enum Action {
+    Up,
+    Down,
+    Left,
+    Right,
+    PageUp,
+    PageDown,
+    RowStart,
+    RowEnd,
+    First,
+    Last,
+    NextGranule,
+    PreviousGranule,
+    NextUnsigned,
+    NextLayer,
+    PreviousLayer,
+    AskLayer,
+    ChannelLayer,
+    CycleRange,
+    ChannelUp,
+    ChannelDown,
+    ChannelFarUp,
+    ChannelFarDown,
+    AskChannel,
+    SwitchQuantity,
+    ZoomIn,
+    ZoomOut,
+    PanLeft,
+    PanRight,
+    WholeSpectrum,
+    Pin,
+    Unpin,
+    Flag,
+    FlagAgain,
+    Withdraw,
+    Assess,
+    Box,
+    Side,
+    Undo,
+    Redo,
+    Comment,
+    SignOff,
+    SetAside,
+    Reopen,
+    Export,
+    NextPane,
+    PreviousPane,
+    Maximise,
+    Command,
+    Help,
+    Mouse,
+    Redraw,
+    Suspend,
+    Cancel,
+    Quit,
+}
+
+/// The headings of the help.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Group {
+    /// Moving over footprints and granules.
+    Moving,
+    /// What the Field shows.
+    Layers,
+    /// The spectrum.
+    Spectrum,
+    /// Flags and other decisions.
+    Deciding,
+    /// The program itself.
+    Program,
+}
+
+impl Group {
+    /// All headings, in the order of the help.
+    pub const ALL: [Group; 5] =
+        [Group::Moving, Group::Layers, Group::Spectrum, Group::Deciding, Group::Program];
+
+    /// The heading.
+    pub fn title(self) -> &'static str {
+        match self {
+            Group::Moving => "Moving",
+            Group::Layers => "Field: layers",
+            Group::Spectrum => "Trace: spectra",
+            Group::Deciding => "Deciding",
+            Group::Program => "Program",
+        }
+    }
+}
+
+/// One row of the table.
+#[derive(Debug, Clone, Copy)]
+pub struct Binding {
+    /// Any of these keys.
+    pub keys: &'static [Key],
+    /// What it does.
+    pub action: Action,
+    /// Its name on the command line.
+    pub name: &'static str,
+    /// Where the help lists it.
+    pub group: Group,
+    /// The help text.
+    pub help: &'static str,
+}
+
+const fn row(
+    keys: &'static [Key],
+    action: Action,
+    name: &'static str,
+    group: Group,
+    help: &'static str,
+) -> Binding {
+    Binding { keys, action, name, group, help }
+}
+
+const fn key(code: Code) -> Key {
+    Key::plain(code)
+}
+
+const fn letter(letter: char) -> Key {
+    Key::char(letter)
+}
+
+use Group::{Deciding, Layers, Moving, Program, Spectrum};
+
+/// Every key, in the order of the help.
+pub const BINDINGS: &[Binding] = &[
+    row(&[key(Code::Up), letter('k')], Action::Up, "up", Moving, "cursor up"),
+    row(&[key(Code::Down), letter('j')], Action::Down, "down", Moving, "cursor down"),
+    row(&[key(Code::Left), letter('h')], Action::Left, "left", Moving, "cursor left"),
+    row(&[key(Code::Right), letter('l')], Action::Right, "right", Moving, "cursor right"),
+    row(&[key(Code::PageUp)], Action::PageUp, "page-up", Moving, "cursor a page up"),
+    row(&[key(Code::PageDown)], Action::PageDown, "page-down", Moving, "cursor a page down"),
+    row(&[key(Code::Home)], Action::RowStart, "row-start", Moving, "start of the row"),
+    row(&[key(Code::End)], Action::RowEnd, "row-end", Moving, "end of the row"),
+    row(&[letter('g')], Action::First, "first", Moving, "first footprint"),
+    row(&[letter('G')], Action::Last, "last", Moving, "last footprint"),
+    row(&[letter('n')], Action::NextGranule, "next", Moving, "next granule"),
+    row(&[letter('p')], Action::PreviousGranule, "previous", Moving, "previous granule"),
+    row(&[letter('N')], Action::NextUnsigned, "next-open", Moving, "next granule not signed off"),
+    row(&[letter(']')], Action::NextLayer, "next-layer", Layers, "next suggested layer"),
+    row(&[letter('[')], Action::PreviousLayer, "previous-layer", Layers, "previous layer"),
+    row(&[letter('e')], Action::AskLayer, "ask-layer", Layers, "type a layer expression"),
+    row(&[letter('c')], Action::ChannelLayer, "channel-layer", Layers, "BT of the channel in hand"),
+    row(&[letter('%')], Action::CycleRange, "cycle-range", Layers, "colour range by percentiles"),
+    row(&[letter('.')], Action::ChannelUp, "channel-up", Spectrum, "next channel in hand"),
+    row(&[letter(',')], Action::ChannelDown, "channel-down", Spectrum, "previous channel"),
+    row(&[letter('>')], Action::ChannelFarUp, "channel-far-up", Spectrum, "20 channels up"),
+    row(&[letter('<')], Action::ChannelFarDown, "channel-far-down", Spectrum, "20 channels down"),
+    row(
+        &[letter('/')],
+        Action::AskChannel,
+        "ask-channel",
+        Spectrum,
+        "go to a wavenumber or length",
+    ),
+    row(&[letter('b')], Action::SwitchQuantity, "quantity", Spectrum, "BT or radiance"),
+    row(&[letter('+'), letter('=')], Action::ZoomIn, "zoom-in", Spectrum, "zoom in at the channel"),
+    row(&[letter('-')], Action::ZoomOut, "zoom-out", Spectrum, "zoom out"),
+    row(&[letter('(')], Action::PanLeft, "pan-left", Spectrum, "pan to lower wavenumbers"),
+    row(&[letter(')')], Action::PanRight, "pan-right", Spectrum, "pan to higher wavenumbers"),
+    row(&[letter('0')], Action::WholeSpectrum, "whole", Spectrum, "the whole spectrum"),
+    row(&[letter('x')], Action::Pin, "pin", Spectrum, "pin the footprint to compare"),
+    row(&[letter('X')], Action::Unpin, "unpin", Spectrum, "take all pins off"),
+    row(&[letter('f')], Action::Flag, "choose-flag", Deciding, "flag the footprint or the box"),
+    row(&[letter('F')], Action::FlagAgain, "flag-again", Deciding, "the same flag once more"),
+    row(&[letter('w')], Action::Withdraw, "choose-withdraw", Deciding, "withdraw a flag"),
+    row(&[letter('a')], Action::Assess, "assess", Deciding, "mark as looked at"),
+    row(&[letter('v')], Action::Box, "box", Deciding, "start a box, then move"),
+    row(&[letter('t')], Action::Side, "ask-side", Deciding, "all on one side of a layer value"),
+    row(&[letter('u')], Action::Undo, "undo", Deciding, "undo the last decision"),
+    row(&[letter('r'), Key::control('r')], Action::Redo, "redo", Deciding, "redo"),
+    row(&[letter('C')], Action::Comment, "ask-comment", Deciding, "write down a remark"),
+    row(&[letter('S')], Action::SignOff, "sign-off", Deciding, "sign the granule off"),
+    row(&[letter('A')], Action::SetAside, "ask-aside", Deciding, "set the granule aside"),
+    row(&[letter('O')], Action::Reopen, "reopen", Deciding, "take the granule up again"),
+    row(&[letter('E')], Action::Export, "export", Deciding, "export the flag mask"),
+    row(&[key(Code::Tab)], Action::NextPane, "next-pane", Program, "next pane"),
+    row(&[key(Code::BackTab)], Action::PreviousPane, "previous-pane", Program, "previous pane"),
+    row(&[letter('z')], Action::Maximise, "maximise", Program, "one pane on the whole screen"),
+    row(&[letter(':')], Action::Command, "command", Program, "command line, Tab completes"),
+    row(&[letter('?'), key(Code::Function(1))], Action::Help, "help", Program, "this help"),
+    row(&[letter('m')], Action::Mouse, "mouse", Program, "mouse on or off"),
+    row(&[Key::control('l')], Action::Redraw, "redraw", Program, "draw the screen anew"),
+    row(&[Key::control('z')], Action::Suspend, "suspend", Program, "back to the shell; fg returns"),
+    row(&[key(Code::Esc)], Action::Cancel, "cancel", Program, "cancel box, prompt or task"),
+    row(&[letter('q'), Key::control('c')], Action::Quit, "quit", Program, "leave"),
+];
+
+/// What a key does while no prompt is open.
+pub fn action_of(key: Key) -> Option<Action> {
+    BINDINGS.iter().find(|binding| binding.keys.contains(&key)).map(|binding| binding.action)
+}
+
+/// The action of a command name.
+pub fn action_named(name: &str) -> Option<Action> {
+    BINDINGS.iter().find(|binding| binding.name == name).map(|binding| binding.action)
+}
+
+/// The keys of one row as the help writes them.
+pub fn keys_text(binding: &Binding) -> String {
+    binding.keys.iter().map(Key::to_string).collect::<Vec<_>>().join(" ")
+}
+
+/// The first key of an action as the hints write it.
+pub fn hint_key(action: Action) -> String {
+    let binding = BINDINGS.iter().find(|binding| binding.action == action);
+    binding.and_then(|binding| binding.keys.first()).map(Key::to_string).unwrap_or_default()
+}
+
+#[cfg(test)]
+mod tests {
+    use std::collections::HashMap;
+
+    use super::*;
+
+    #[test]
+    fn no_key_and_no_name_has_two_meanings() {
+        let mut keys = HashMap::new();
+        let mut names = HashMap::new();
+        let mut actions = HashMap::new();
+        for binding in BINDINGS {
+            assert!(!binding.keys.is_empty() && !binding.help.is_empty());
+            for key in binding.keys {
+                assert_eq!(keys.insert(*key, binding.name), None, "{key}");
+            }
+            assert_eq!(names.insert(binding.name, ()), None, "{}", binding.name);
+            assert_eq!(actions.insert(binding.action, ()), None, "{}", binding.name);
+        }
+    }
+
+    #[test]
+    fn the_contract_keys_stand() {
+        assert_eq!(action_of(Key::char('q')), Some(Action::Quit));
+        assert_eq!(action_of(Key::char('?')), Some(Action::Help));
+        assert_eq!(action_of(Key::char(':')), Some(Action::Command));
+        assert_eq!(action_of(Key::plain(Code::Left)), Some(Action::Left));
+    }
+
+    #[test]
+    fn help_texts_fit_half_of_a_narrow_screen() {
+        for binding in BINDINGS {
+            assert!(binding.help.len() <= 32, "{}", binding.help);
+            assert!(keys_text(binding).len() <= 10, "{}", keys_text(binding));
+        }
+    }
+}

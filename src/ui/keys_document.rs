@@ -1,0 +1,58 @@
+//! The text of `docs/keys.md`, made from the tables.
+
+use std::fmt::Write;
+
+use super::command;
+use super::keys::{BINDINGS, Group, keys_text};
+
+const INTRODUCTION: &str = "\
+# Keys
+
+Made from the table in `src/ui/keys.rs`; a test holds the two together. While a prompt or the help
+is open, its own line says which keys it takes; Esc leaves it.
+
+In the Tray the up and down keys choose a granule and Enter opens it. In every other pane the arrows
+move the cursor over the footprints.
+";
+
+const COMMANDS: &str = "
+## Commands
+
+Behind `:`, Tab completes and Up and Down go through what was typed before. Every name in the tables
+above is a command, and these take words:
+
+| command | what it does |
+| --- | --- |
+";
+
+/// The whole document.
+pub fn document() -> String {
+    let mut text = String::from(INTRODUCTION);
+    for group in Group::ALL {
+        // Writing into a string cannot fail.
+        let _ = writeln!(text, "\n## {}\n", group.title());
+        text.push_str("| keys | command | what it does |\n| --- | --- | --- |\n");
+        for binding in BINDINGS.iter().filter(|binding| binding.group == group) {
+            let keys: Vec<String> =
+                keys_text(binding).split(' ').map(|key| format!("`{key}`")).collect();
+            let (keys, name, help) = (keys.join(" "), binding.name, binding.help);
+            let _ = writeln!(text, "| {keys} | `{name}` | {help} |");
+        }
+    }
+    text.push_str(COMMANDS);
+    for (typed, help) in command::worded_help() {
+        let _ = writeln!(text, "| `{typed}` | {help} |");
+    }
+    text
+}
+
+#[cfg(test)]
+mod tests {
+    #[test]
+    fn docs_keys_md_is_the_table() {
+        let path = concat!(env!("CARGO_MANIFEST_DIR"), "/docs/keys.md");
+        let expected = super::document();
+        let found = std::fs::read_to_string(path).unwrap_or_default();
+        assert!(found == expected, "docs/keys.md should be:\n{expected}");
+    }
+}

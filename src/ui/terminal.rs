@@ -1,0 +1,136 @@
+//! Taking the terminal over and giving it back whole: on leaving, on errors, on panics and signals.
+
+use std::io::{self, BufWriter, IsTerminal, Stdout, Write};
+use std::os::fd::AsFd;
+use std::sync::Once;
+use std::sync::atomic::{AtomicBool, Ordering};
+
+use crossterm::style::Print;
+use crossterm::terminal::{
+    BeginSynchronizedUpdate, Clear, ClearType, DisableLineWrap, EndSynchronizedUpdate,
+};
+use crossterm::{cursor, execute, queue, terminal};
+use ratatui::backend::CrosstermBackend;
+use ratatui::{Frame, Terminal};
+
+type Writer = BufWriter<Stdout>;
+
+/// Buttons, dragging and the wheel with plain decimal positions. Not every movement: over a slow
+/// link that would be traffic without end.
+const MOUSE_ON: &str = "\x1b[?1000h\x1b[?1002h\x1b[?1006h";
+const MOUSE_OFF: &str = "\x1b[?1006l\x1b[?1002l\x1b[?1000l";
+const PASTE_ON: &str = "\x1b[?2004h";
+/// Ends a synchronised update, mouse and paste reports and colours, wraps lines again, leaves the
+/// alternate screen and shows the cursor.
+const GIVE_BACK: &[u8] = b"\x1b[?2026l\x1b[?1006l\x1b[?1002l\x1b[?1000l\x1b[?2004l\x1b[0m\
+\x1b[?7h\x1b[?1049l\x1b[?25h";
+
+/// True while the terminal is in our hands.
+static TAKEN: AtomicBool = AtomicBool::new(false);
+static PANIC_HOOK: Once = Once::new();
+
+/// The terminal in our hands; given back when this is dropped.
+pub struct Screen {
+    terminal: Terminal<CrosstermBackend<Writer>>,
+    synchronised: bool,
+}
+
+/// Whether a terminal is there that can show the review.
+pub fn is_usable(term: Option<&str>) -> bool {
+    io::stdout().is_terminal() && !matches!(term, None | Some("" | "dumb"))
+}
+
+impl Screen {
+    /// Raw mode, alternate screen, pastes in one piece; a blank screen to draw on.
+    ///
+    /// # Errors
+    /// Whatever the terminal refuses; it is then given back already.
+    pub fn take(mouse: bool, synchronised: bool) -> io::Result<Screen> {
+        install_panic_hook();
+        TAKEN.store(true, Ordering::SeqCst);
+        let screen = start(mouse, synchronised);
+        if screen.is_err() {
+            give_back();
+        }
+        screen
+    }
+
+    /// Draws what changed since the last time.
+    ///
+    /// # Errors
+    /// The terminal has gone away.
+    pub fn draw(&mut self, draw: impl FnOnce(&mut Frame<'_>)) -> io::Result<()> {
+        if self.synchronised {
+            queue!(self.terminal.backend_mut(), BeginSynchronizedUpdate)?;
+        }
+        self.terminal.draw(draw)?;
+        if self.synchronised {
+            queue!(self.terminal.backend_mut(), EndSynchronizedUpdate)?;
+        }
+        io::Write::flush(self.terminal.backend_mut())
+    }
+
+    /// Makes the next drawing a complete one, for a screen that something else wrote on.
+    ///
+    /// # Errors
+    /// The terminal has gone away.
+    pub fn forget(&mut self) -> io::Result<()> {
+        // Resizing to the present size blanks the screen without asking the terminal anything.
+        let size = self.terminal.size()?;
+        self.terminal.resize(ratatui::layout::Rect::new(0, 0, size.width, size.height))
+    }
+
+    /// Switches mouse reports on or off.
+    ///
+    /// # Errors
+    /// The terminal has gone away.
+    pub fn set_mouse(&mut self, on: bool) -> io::Result<()> {
+        execute!(self.terminal.backend_mut(), Print(if on { MOUSE_ON } else { MOUSE_OFF }))
+    }
+}
+
+impl Drop for Screen {
+    fn drop(&mut self) {
+        give_back();
+    }
+}
+
+fn start(mouse: bool, synchronised: bool) -> io::Result<Screen> {
+    terminal::enable_raw_mode()?;
+    let mut writer = BufWriter::with_capacity(64 * 1024, io::stdout());
+    queue!(writer, terminal::EnterAlternateScreen, DisableLineWrap, Clear(ClearType::All))?;
+    queue!(writer, Print(PASTE_ON), cursor::Hide)?;
+    if mouse {
+        queue!(writer, Print(MOUSE_ON))?;
+    }
+    writer.flush()?;
+    let terminal = Terminal::new(CrosstermBackend::new(writer))?;
+    Ok(Screen { terminal, synchronised })
+}
+
+/// Gives the terminal back, from any thread. Errors are of no use here: the terminal may be gone.
+pub fn give_back() {
+    if !TAKEN.swap(false, Ordering::SeqCst) {
+        return;
+    }
+    // Written past the locked standard output: its owner may be stuck in the middle of a frame.
+    let _ = rustix::io::write(io::stdout().as_fd(), GIVE_BACK);
+    let _ = terminal::disable_raw_mode();
+}
+
+/// A panic on the thread that owns the screen gives the terminal back before it is reported. A
+/// panic elsewhere is a job's: its runner turns it into a message, and the screen stays.
+fn install_panic_hook() {
+    PANIC_HOOK.call_once(|| {
+        let owner = std::thread::current().id();
+        let report = std::panic::take_hook();
+        std::panic::set_hook(Box::new(move |panic| {
+            if std::thread::current().id() == owner {
+                give_back();
+                report(panic);
+            } else if !TAKEN.load(Ordering::SeqCst) {
+                report(panic);
+            }
+        }));
+    });
+}
