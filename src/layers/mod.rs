@@ -3,3 +3,11 @@
 //! Uses: `system`, `units`, `spectral`, `granule`.
 //!
 //! **Never** decides anything.
+
+mod syntax;
+mod unit;
+
+pub use syntax::{
+    Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions, near_names,
+};
+pub use unit::LayerUnit;

@@ -1,0 +1,20 @@
+//! The language: text to tree and back, with messages that point at the place.
+
+mod expression;
+mod grammar;
+mod mistake;
+mod near_names;
+mod place;
+mod print;
+mod tree;
+mod vocabulary;
+
+#[cfg(test)]
+mod grammar_tests;
+
+pub use expression::{Expression, ExpressionError};
+pub use mistake::Mistake;
+pub use near_names::near_names;
+pub use place::{LengthOrWavenumber, Place};
+pub use tree::{Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where};
+pub use vocabulary::{FRIENDLY_NAMES, FriendlyName, functions};

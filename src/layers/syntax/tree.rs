@@ -1,0 +1,164 @@
+//! The syntax tree of an expression.
+
+use std::ops::Range;
+
+use super::place::Place;
+
+/// Bytes of the text that a part of the tree was read from.
+pub type Span = Range<usize>;
+
+/// A part of an expression and where it stands in the text.
+#[derive(Debug, Clone)]
+pub struct Node {
+    /// Where it stands.
+    pub span: Span,
+    /// What it is.
+    pub kind: Kind,
+}
+
+impl Node {
+    /// Shows this part and every part of it to `look`, in the order of the text.
+    pub fn visit<'n>(&'n self, look: &mut dyn FnMut(&'n Node)) {
+        look(self);
+        match &self.kind {
+            Kind::Planck(operand, _)
+            | Kind::Prefix(_, operand)
+            | Kind::Neighbourhood(_, operand) => operand.visit(look),
+            Kind::Infix(_, left, right) => {
+                left.visit(look);
+                right.visit(look);
+            }
+            Kind::Call(_, operands) => operands.iter().for_each(|operand| operand.visit(look)),
+            Kind::Number(_) | Kind::Name(_) | Kind::Variable(_) | Kind::Spectral(..) => {}
+        }
+    }
+}
+
+/// Two parts are equal when they mean the same, wherever they stand.
+impl PartialEq for Node {
+    fn eq(&self, other: &Self) -> bool {
+        self.kind == other.kind
+    }
+}
+
+/// What a part of an expression is.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Kind {
+    /// A number.
+    Number(f64),
+    /// A bare name: a geolocation field, a definition, an index of a footprint dimension.
+    Name(String),
+    /// `var("name in the file")`.
+    Variable(String),
+    /// `bt(…)` or `rad(…)`.
+    Spectral(Quantity, Where),
+    /// `planck(T, nu)`: the radiance of a black body.
+    Planck(Box<Node>, Place),
+    /// `-a`, `not a`.
+    Prefix(Prefix, Box<Node>),
+    /// `a + b`, `a < b`, `a and b`, …
+    Infix(Infix, Box<Node>, Box<Node>),
+    /// `min(a, b)`, `sqrt(a)`, …
+    Call(Function, Vec<Node>),
+    /// `sd3(a)`, …: over the neighbourhood on the ground.
+    Neighbourhood(Statistic, Box<Node>),
+}
+
+/// What is asked of a channel or an interval.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum Quantity {
+    /// Brightness temperature, K.
+    BrightnessTemperature,
+    /// Radiance, mW m-2 sr-1 (cm-1)-1.
+    Radiance,
+}
+
+/// Where in the spectrum.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Where {
+    /// The nearest channel.
+    At(Place),
+    /// All channels of an interval; `low <= high` in wavenumber.
+    Between(Place, Place),
+}
+
+/// Operators before their operand.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Prefix {
+    /// Sign change.
+    Negate,
+    /// 1 for 0, 0 for anything else.
+    Not,
+}
+
+/// Operators between their operands.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[allow(missing_docs)]
+pub enum Infix {
+    Or,
+    And,
+    Less,
+    LessOrEqual,
+    Greater,
+    GreaterOrEqual,
+    Equal,
+    NotEqual,
+    Add,
+    Subtract,
+    Multiply,
+    Divide,
+    Power,
+}
+
+impl Infix {
+    /// How it is written.
+    pub fn symbol(self) -> &'static str {
+        match self {
+            Self::Or => "or",
+            Self::And => "and",
+            Self::Less => "<",
+            Self::LessOrEqual => "<=",
+            Self::Greater => ">",
+            Self::GreaterOrEqual => ">=",
+            Self::Equal => "==",
+            Self::NotEqual => "!=",
+            Self::Add => "+",
+            Self::Subtract => "-",
+            Self::Multiply => "*",
+            Self::Divide => "/",
+            Self::Power => "^",
+        }
+    }
+}
+
+/// Functions of numbers, footprint by footprint.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Function {
+    /// Smallest of two or more.
+    Min,
+    /// Largest of two or more.
+    Max,
+    /// Absolute value.
+    Abs,
+    /// Square root; missing below zero.
+    Sqrt,
+    /// Natural logarithm; missing at and below zero.
+    Ln,
+    /// Exponential.
+    Exp,
+}
+
+/// Statistics of the neighbourhood on the ground.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum Statistic {
+    /// Population standard deviation.
+    StandardDeviation,
+    /// Mean.
+    Mean,
+    /// Smallest.
+    Minimum,
+    /// Largest.
+    Maximum,
+    /// Largest minus smallest.
+    Range,
+}

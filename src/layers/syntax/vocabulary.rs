@@ -1,0 +1,118 @@
+//! The words of the language, one table each.
+
+use super::tree::{Function, Quantity, Statistic};
+use crate::layers::unit::LayerUnit;
+
+/// A field of the geolocation that every granule may have, under the same name in every file.
+#[derive(Debug, Clone, Copy)]
+pub struct FriendlyName {
+    /// As written in an expression.
+    pub name: &'static str,
+    /// Unit of its values.
+    pub unit: LayerUnit,
+    /// What it is, in a few words.
+    pub meaning: &'static str,
+}
+
+/// The geolocation fields.
+pub const FRIENDLY_NAMES: &[FriendlyName] = &[
+    FriendlyName { name: "lat", unit: LayerUnit::Degree, meaning: "latitude, degrees north" },
+    FriendlyName { name: "lon", unit: LayerUnit::Degree, meaning: "longitude, degrees east" },
+    FriendlyName {
+        name: "view_zenith",
+        unit: LayerUnit::Degree,
+        meaning: "zenith angle of the view, degrees",
+    },
+    FriendlyName {
+        name: "view_azimuth",
+        unit: LayerUnit::Degree,
+        meaning: "azimuth angle of the view, degrees",
+    },
+    FriendlyName {
+        name: "solar_zenith",
+        unit: LayerUnit::Degree,
+        meaning: "zenith angle of the sun, degrees",
+    },
+    FriendlyName {
+        name: "solar_azimuth",
+        unit: LayerUnit::Degree,
+        meaning: "azimuth angle of the sun, degrees",
+    },
+    FriendlyName { name: "land", unit: LayerUnit::One, meaning: "land fraction, 0 to 1" },
+    FriendlyName { name: "time", unit: LayerUnit::Unknown, meaning: "time, in the file's unit" },
+];
+
+/// What a name followed by a parenthesis stands for.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Callable {
+    /// `bt`, `rad`.
+    Spectral(Quantity),
+    /// `planck`.
+    Planck,
+    /// `var`.
+    Variable,
+    /// Functions of numbers, and how many they take.
+    Function(Function, Arity),
+    /// Statistics of the neighbourhood.
+    Neighbourhood(Statistic),
+}
+
+/// How many operands a function takes.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Arity {
+    /// Exactly one.
+    One,
+    /// Two or more.
+    TwoOrMore,
+}
+
+/// Name, what it stands for, how it is written.
+const CALLABLE: &[(&str, Callable, &str)] = &[
+    ("bt", Callable::Spectral(Quantity::BrightnessTemperature), "bt(900)"),
+    ("rad", Callable::Spectral(Quantity::Radiance), "rad(667.5)"),
+    ("planck", Callable::Planck, "planck(280, 900)"),
+    ("var", Callable::Variable, "var(\"name in the file\")"),
+    ("min", Callable::Function(Function::Min, Arity::TwoOrMore), "min(a, b)"),
+    ("max", Callable::Function(Function::Max, Arity::TwoOrMore), "max(a, b)"),
+    ("abs", Callable::Function(Function::Abs, Arity::One), "abs(a)"),
+    ("sqrt", Callable::Function(Function::Sqrt, Arity::One), "sqrt(a)"),
+    ("ln", Callable::Function(Function::Ln, Arity::One), "ln(a)"),
+    ("exp", Callable::Function(Function::Exp, Arity::One), "exp(a)"),
+    ("sd3", Callable::Neighbourhood(Statistic::StandardDeviation), "sd3(bt(900))"),
+    ("mean3", Callable::Neighbourhood(Statistic::Mean), "mean3(bt(900))"),
+    ("min3", Callable::Neighbourhood(Statistic::Minimum), "min3(bt(900))"),
+    ("max3", Callable::Neighbourhood(Statistic::Maximum), "max3(bt(900))"),
+    ("range3", Callable::Neighbourhood(Statistic::Range), "range3(bt(900))"),
+];
+
+/// Words that join and can't be names.
+pub const JOINING_WORDS: &[&str] = &["and", "or", "not"];
+
+/// What a name with a parenthesis stands for.
+pub fn callable(name: &str) -> Option<Callable> {
+    CALLABLE.iter().find(|(word, ..)| *word == name).map(|(_, callable, _)| *callable)
+}
+
+/// The name of a callable.
+pub fn name_of(wanted: Callable) -> &'static str {
+    CALLABLE.iter().find(|(_, callable, _)| *callable == wanted).map_or("", |(word, ..)| word)
+}
+
+/// How a callable is written, as an example.
+pub fn example_of(name: &str) -> &'static str {
+    CALLABLE.iter().find(|(word, ..)| *word == name).map_or("", |(.., example)| example)
+}
+
+/// The functions' names with an example each, for completion and documents.
+pub fn functions() -> impl Iterator<Item = (&'static str, &'static str)> {
+    CALLABLE.iter().map(|(name, _, example)| (*name, *example))
+}
+
+/// The function's name.
+pub fn function_name(function: Function) -> &'static str {
+    let arity = match function {
+        Function::Min | Function::Max => Arity::TwoOrMore,
+        _ => Arity::One,
+    };
+    name_of(Callable::Function(function, arity))
+}
