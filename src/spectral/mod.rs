@@ -5,6 +5,26 @@
 //! **Never** opens a file.
 
 pub mod constants;
+mod absorption_bands;
+mod apodisation;
+mod band_correction;
+mod band_integral;
+mod channel_axis;
+pub mod fast;
+mod noise;
 mod planck;
+mod planck_forms;
+mod segments;
 
-pub use planck::planck;
+pub use absorption_bands::{ABSORPTION_BANDS, AbsorptionBand};
+pub use apodisation::{HAMMING_CENTRE, HAMMING_NOISE_FACTOR, HAMMING_SIDE, hamming3};
+pub use band_correction::BandCorrection;
+pub use band_integral::{band_integral, blackbody_fraction, total_radiance};
+pub use channel_axis::{AxisError, ChannelAxis, Nearest};
+pub use noise::{nedt, nedt_at};
+pub use planck::{
+    NoTemperature, brightness_temperature, brightness_temperature_or_nan, planck, planck_slope,
+};
+pub use planck_forms::{
+    planck_frequency, planck_wavelength, temperature_frequency, temperature_wavelength,
+};
