@@ -1,5 +1,41 @@
 //! Flag vocabulary, decisions, the ledger files and their replay into the current flags.
 //!
+//! Facts are appended, state is replayed: nothing here sets a flag. A decision is appended to the
+//! ledger of its writer, and the flags are folded from all decisions of a granule.
+//!
 //! Uses: `system`.
 //!
 //! **Never** changes a written line.
+
+mod author;
+mod campaign;
+mod campaign_settings;
+mod decision;
+mod footprint_set;
+mod history;
+mod ledger_file;
+mod ledger_line;
+mod ledger_reader;
+#[cfg(test)]
+mod ledger_tests;
+mod ledger_writer;
+mod places;
+mod replay;
+#[cfg(test)]
+mod replay_tests;
+mod review_state;
+mod state;
+mod vocabulary;
+
+pub use author::{Author, file_name_part};
+pub use campaign::{Campaign, CampaignError, GranuleIdentity};
+pub use campaign_settings::{CampaignSettings, SETTINGS_FILE};
+pub use decision::{Act, ChannelName, Decision, DecisionId, Origin};
+pub use footprint_set::FootprintSet;
+pub use history::{redo_target, standing, undo_target};
+pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};
+pub use ledger_reader::{LedgerProblem, LedgerReading, read_ledgers};
+pub use ledger_writer::{LedgerEvent, LedgerWriter, NotKept};
+pub use review_state::{GranuleState, ReviewState};
+pub use state::{ChannelFlags, Counts, FlagState};
+pub use vocabulary::{FlagExtension, FlagKind, Scope, Vocabulary, VocabularyError};

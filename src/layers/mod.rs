@@ -4,11 +4,9 @@
 //!
 //! **Never** decides anything.
 
-mod neighbours;
 mod syntax;
 mod unit;
 
-pub use neighbours::Neighbours;
 pub use syntax::{
     Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions, near_names,
 };

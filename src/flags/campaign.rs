@@ -1,0 +1,200 @@
+//! The campaign folder: settings, ledgers, places. The archive itself is never written to.
+
+use std::io;
+use std::path::{Path, PathBuf};
+
+use serde::{Deserialize, Serialize};
+
+use super::{CampaignSettings, file_name_part};
+
+/// Which granule a ledger is about: its content, not its path.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+pub struct GranuleIdentity {
+    /// The BLAKE3 hash of the file's bytes, in hexadecimal.
+    pub hash: String,
+    /// Bytes.
+    pub size: u64,
+    /// The file's name when the ledger was begun, as a hint for people.
+    pub name: String,
+    /// The footprint dimensions: name and length, in the file's order.
+    pub footprints: Vec<(String, usize)>,
+}
+
+impl GranuleIdentity {
+    /// The beginning of the hash: enough to tell the granules of a campaign apart.
+    pub fn short(&self) -> &str {
+        self.hash.get(..12).unwrap_or(&self.hash)
+    }
+}
+
+/// Why a campaign folder cannot be used.
+#[derive(Debug, thiserror::Error)]
+pub enum CampaignError {
+    /// There is no such folder.
+    #[error("no campaign folder at {0}: name one with --campaign, or make it by a review")]
+    Missing(PathBuf),
+    /// It cannot be created or written to.
+    #[error(
+        "cannot write to the campaign folder {path}: {source}; choose another with --campaign, \
+         or ask for the right to write there"
+    )]
+    Unwritable {
+        /// The folder.
+        path: PathBuf,
+        /// What the system says.
+        source: io::Error,
+    },
+    /// Something in it cannot be read.
+    #[error("cannot read {path}: {source}")]
+    Unreadable {
+        /// The file or folder.
+        path: PathBuf,
+        /// What the system says.
+        source: io::Error,
+    },
+    /// The settings make no sense.
+    #[error("{path}: {what}")]
+    Settings {
+        /// The settings file.
+        path: PathBuf,
+        /// What is wrong.
+        what: String,
+    },
+}
+
+/// A campaign folder that is there.
+#[derive(Debug, Clone)]
+pub struct Campaign {
+    folder: PathBuf,
+    settings: CampaignSettings,
+}
+
+impl Campaign {
+    /// Opens a campaign for writing; creates folder and settings where there are none.
+    ///
+    /// # Errors
+    /// The folder cannot be written to, or its settings make no sense.
+    pub fn open_or_create(folder: &Path) -> Result<Self, CampaignError> {
+        let unwritable = |source| CampaignError::Unwritable { path: folder.to_owned(), source };
+        std::fs::create_dir_all(folder.join(LEDGERS)).map_err(unwritable)?;
+        // Permission bits do not tell on network file systems: only writing does. The file has no
+        // name and is gone when closed.
+        drop(tempfile::tempfile_in(folder.join(LEDGERS)).map_err(unwritable)?);
+        CampaignSettings::create(folder).map_err(unwritable)?;
+        Self::open(folder)
+    }
+
+    /// Opens a campaign for reading; writes nothing.
+    ///
+    /// # Errors
+    /// There is no such folder, or its settings make no sense.
+    pub fn open(folder: &Path) -> Result<Self, CampaignError> {
+        match std::fs::metadata(folder) {
+            Ok(data) if data.is_dir() => {}
+            Ok(_) => return Err(CampaignError::Missing(folder.to_owned())),
+            Err(error) if error.kind() == io::ErrorKind::NotFound => {
+                return Err(CampaignError::Missing(folder.to_owned()));
+            }
+            Err(source) => {
+                return Err(CampaignError::Unreadable { path: folder.to_owned(), source });
+            }
+        }
+        let settings = CampaignSettings::read(folder)?;
+        Ok(Self { folder: folder.to_owned(), settings })
+    }
+
+    /// The folder.
+    pub fn folder(&self) -> &Path {
+        &self.folder
+    }
+
+    /// The settings as they were when the campaign was opened.
+    pub fn settings(&self) -> &CampaignSettings {
+        &self.settings
+    }
+
+    /// The folders that hold ledgers of a granule, sorted. More than one where the file was renamed
+    /// and two people began at the same moment.
+    pub(super) fn ledger_folders(&self, granule: &GranuleIdentity) -> io::Result<Vec<PathBuf>> {
+        let ending = format!("-{}", file_name_part(granule.short()));
+        let mut found = Vec::new();
+        match std::fs::read_dir(self.folder.join(LEDGERS)) {
+            Err(error) if error.kind() == io::ErrorKind::NotFound => {}
+            Err(error) => return Err(error),
+            Ok(entries) => {
+                for entry in entries {
+                    let entry = entry?;
+                    if entry.file_name().to_string_lossy().ends_with(&ending) {
+                        found.push(entry.path());
+                    }
+                }
+            }
+        }
+        found.sort();
+        Ok(found)
+    }
+
+    /// The folder in which a new ledger of a granule belongs: one that is there already, or one
+    /// named after the file. It is not created.
+    pub(super) fn ledger_folder(&self, granule: &GranuleIdentity) -> io::Result<PathBuf> {
+        let first = self.ledger_folders(granule)?.into_iter().next();
+        Ok(first.unwrap_or_else(|| {
+            let stem = Path::new(&granule.name).file_stem().unwrap_or_default();
+            let stem = file_name_part(&stem.to_string_lossy());
+            let name = format!("{stem}-{}", file_name_part(granule.short()));
+            self.folder.join(LEDGERS).join(name)
+        }))
+    }
+}
+
+/// The folder of the ledgers in the campaign folder.
+const LEDGERS: &str = "ledgers";
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_folder_is_made_on_first_need_and_found_again() {
+        let dir = tempfile::tempdir().unwrap();
+        let folder = dir.path().join("a/b");
+        assert!(matches!(Campaign::open(&folder), Err(CampaignError::Missing(_))));
+        let campaign = Campaign::open_or_create(&folder).unwrap();
+        assert!(folder.join(SETTINGS).exists());
+        assert_eq!(campaign.settings(), &CampaignSettings::default());
+        std::fs::write(folder.join(SETTINGS), "title = 'kept'").unwrap();
+        let again = Campaign::open_or_create(&folder).unwrap();
+        assert_eq!(again.settings().title.as_deref(), Some("kept"));
+        let names = std::fs::read_dir(folder.join(LEDGERS)).unwrap().count();
+        assert_eq!(names, 0, "the trial of writing leaves nothing behind");
+    }
+
+    #[test]
+    fn a_folder_that_cannot_be_written_says_what_to_do() {
+        let dir = tempfile::tempdir().unwrap();
+        let file = dir.path().join("file");
+        std::fs::write(&file, "").unwrap();
+        let error = Campaign::open_or_create(&file.join("campaign")).unwrap_err();
+        assert!(error.to_string().contains("choose another with --campaign"), "{error}");
+        assert!(matches!(Campaign::open(&file), Err(CampaignError::Missing(_))));
+    }
+
+    #[test]
+    fn a_renamed_granule_keeps_its_ledger_folder() {
+        let dir = tempfile::tempdir().unwrap();
+        let campaign = Campaign::open_or_create(dir.path()).unwrap();
+        let mut granule = GranuleIdentity {
+            hash: "0123456789abcdef".to_owned(),
+            size: 3,
+            name: "lowen_001.nc".to_owned(),
+            footprints: vec![("line".to_owned(), 3)],
+        };
+        let folder = campaign.ledger_folder(&granule).unwrap();
+        assert!(folder.ends_with("ledgers/lowen_001-0123456789ab"), "{folder:?}");
+        std::fs::create_dir(&folder).unwrap();
+        granule.name = "renamed.nc".to_owned();
+        assert_eq!(campaign.ledger_folder(&granule).unwrap(), folder);
+    }
+
+    const SETTINGS: &str = super::super::SETTINGS_FILE;
+}

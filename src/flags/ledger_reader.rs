@@ -1,0 +1,249 @@
+//! Reading the ledgers of a granule: whatever they hold, never a panic, never a silent loss.
+
+use std::collections::BTreeMap;
+use std::fmt;
+use std::io::{self, BufRead, BufReader, Read};
+use std::path::{Path, PathBuf};
+
+use super::ledger_line::{Header, HeaderError, read_decision};
+use super::{Campaign, Decision, DecisionId, GranuleIdentity};
+use crate::system::clean_text;
+
+/// A decision about a million footprints, every other one, is about 7 MB.
+const LONGEST_LINE: u64 = 64 << 20;
+/// A hundred thousand decisions a day for ten days.
+const MOST_DECISIONS: usize = 1_000_000;
+/// After so many broken lines the rest of a file is only counted.
+const MOST_BROKEN: usize = 20;
+
+/// Something in a ledger that could not be taken as it stands.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct LedgerProblem {
+    /// The file or folder.
+    pub path: PathBuf,
+    /// The line, counted from 1; 0 if it is about the whole file.
+    pub line: u64,
+    /// What it is, in words.
+    pub what: String,
+    /// Whether decisions exist that could not be read at all, so that the flags are incomplete.
+    pub hides_decisions: bool,
+}
+
+impl fmt::Display for LedgerProblem {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let path = clean_text(&self.path.display().to_string());
+        match self.line {
+            0 => write!(f, "{path}: {}", self.what),
+            line => write!(f, "{path}, line {line}: {}", self.what),
+        }
+    }
+}
+
+/// What the ledgers of a granule hold.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct LedgerReading {
+    /// All decisions, in the one order in which everybody folds them.
+    pub decisions: Vec<Decision>,
+    /// What could not be taken.
+    pub problems: Vec<LedgerProblem>,
+    /// How many ledger files there are.
+    pub files: usize,
+}
+
+/// Reads all ledgers of a granule. A granule that nobody touched has none: an empty reading.
+pub fn read_ledgers(campaign: &Campaign, granule: &GranuleIdentity) -> LedgerReading {
+    let mut gathering = Gathering::default();
+    match campaign.ledger_folders(granule) {
+        Ok(folders) => folders.iter().for_each(|folder| gathering.folder(folder, granule)),
+        Err(error) => gathering.problem(campaign.folder(), 0, unreadable(&error), true),
+    }
+    gathering.finish()
+}
+
+fn unreadable(error: &io::Error) -> String {
+    format!("cannot be read: {error}; decisions in it do not count until it can")
+}
+
+#[derive(Default)]
+struct Gathering {
+    decisions: BTreeMap<DecisionId, Vec<Decision>>,
+    count: usize,
+    problems: Vec<LedgerProblem>,
+    files: usize,
+}
+
+impl Gathering {
+    fn problem(&mut self, path: &Path, line: u64, what: String, hides_decisions: bool) {
+        let what = clean_text(&what);
+        self.problems.push(LedgerProblem { path: path.to_owned(), line, what, hides_decisions });
+    }
+
+    fn folder(&mut self, folder: &Path, granule: &GranuleIdentity) {
+        let listed = std::fs::read_dir(folder).and_then(Iterator::collect::<io::Result<Vec<_>>>);
+        let mut paths: Vec<PathBuf> = match listed {
+            Ok(entries) => entries.into_iter().map(|entry| entry.path()).collect(),
+            Err(error) => return self.problem(folder, 0, unreadable(&error), true),
+        };
+        paths.retain(|path| path.extension().is_some_and(|extension| extension == "jsonl"));
+        // The order of a folder's listing is an accident.
+        paths.sort();
+        for path in paths {
+            self.files += 1;
+            if let Err(error) = self.file(&path, granule) {
+                self.problem(&path, 0, unreadable(&error), true);
+            }
+        }
+    }
+
+    fn file(&mut self, path: &Path, granule: &GranuleIdentity) -> io::Result<()> {
+        // A pipe or device of that name would block for ever.
+        if !std::fs::metadata(path)?.is_file() {
+            self.problem(path, 0, "is no ordinary file".to_owned(), false);
+            return Ok(());
+        }
+        let mut lines = Lines::new(std::fs::File::open(path)?);
+        let Some(header) = self.header(path, &mut lines, granule)? else { return Ok(()) };
+        let mut broken = 0;
+        while let Some(line) = lines.next()? {
+            if self.count >= MOST_DECISIONS {
+                self.problem(path, line.number, "too many decisions".to_owned(), true);
+                return Ok(());
+            }
+            match line.text.map(|text| read_decision(text, &header)) {
+                Ok(Ok(decision)) => self.decision(path, line.number, decision),
+                Ok(Err(what)) | Err(what) => {
+                    let torn = line.torn;
+                    broken += 1;
+                    if torn {
+                        let what = "the last line was cut off while it was being written; it does \
+                                    not count";
+                        self.problem(path, line.number, what.to_owned(), false);
+                    } else if broken <= MOST_BROKEN {
+                        let what = format!("does not count: {what}");
+                        self.problem(path, line.number, what, true);
+                    }
+                }
+            }
+        }
+        if broken > MOST_BROKEN {
+            let what = format!("{broken} lines in all do not count");
+            self.problem(path, 0, what, true);
+        }
+        Ok(())
+    }
+
+    fn header(
+        &mut self,
+        path: &Path,
+        lines: &mut Lines,
+        granule: &GranuleIdentity,
+    ) -> io::Result<Option<Header>> {
+        let Some(line) = lines.next()? else {
+            let what = "is empty: its writer was stopped before the first decision";
+            self.problem(path, 0, what.to_owned(), false);
+            return Ok(None);
+        };
+        let parsed = line.text.map_err(|_| HeaderError::NoLedger).and_then(Header::parse);
+        match parsed {
+            Ok(header) if header.granule.hash == granule.hash => return Ok(Some(header)),
+            Ok(_) => {
+                let what = "is about another granule; it does not count here";
+                self.problem(path, 1, what.to_owned(), false);
+            }
+            Err(HeaderError::Newer(version)) => {
+                let what = format!(
+                    "was written in ledger format {version}, newer than this version reads ({}): \
+                     use a newer version of the program",
+                    super::LEDGER_VERSION
+                );
+                self.problem(path, 1, what, true);
+            }
+            Err(HeaderError::NoLedger) if line.torn => {
+                let what = "was cut off in its first line, before the first decision";
+                self.problem(path, 1, what.to_owned(), false);
+            }
+            Err(HeaderError::NoLedger) => {
+                self.problem(path, 1, "the first line is no ledger header".to_owned(), true);
+            }
+        }
+        Ok(None)
+    }
+
+    /// A writer that had to begin a new file writes again what was not known to be kept, and a
+    /// folder may hold copies: the same line counts once.
+    fn decision(&mut self, path: &Path, line: u64, decision: Decision) {
+        let same_name = self.decisions.entry(decision.id.clone()).or_default();
+        if same_name.contains(&decision) {
+            return;
+        }
+        let doubled = !same_name.is_empty();
+        same_name.push(decision);
+        self.count += 1;
+        if doubled {
+            let what = "has the number of another decision by the same writer; both count";
+            self.problem(path, line, what.to_owned(), false);
+        }
+    }
+
+    fn finish(self) -> LedgerReading {
+        let mut decisions: Vec<_> = self.decisions.into_values().flatten().collect();
+        decisions.sort_by(|one, other| one.order().cmp(&other.order()));
+        LedgerReading { decisions, problems: self.problems, files: self.files }
+    }
+}
+
+struct Line<'a> {
+    number: u64,
+    /// Without its line break; or why there is none.
+    text: Result<&'a [u8], String>,
+    /// It has no line break: its writer was stopped.
+    torn: bool,
+}
+
+struct Lines {
+    input: BufReader<std::fs::File>,
+    buffer: Vec<u8>,
+    number: u64,
+}
+
+impl Lines {
+    fn new(file: std::fs::File) -> Self {
+        Self { input: BufReader::new(file), buffer: Vec::new(), number: 0 }
+    }
+
+    fn next(&mut self) -> io::Result<Option<Line<'_>>> {
+        self.buffer.clear();
+        self.number += 1;
+        let number = self.number;
+        let mut limited = (&mut self.input).take(LONGEST_LINE);
+        if limited.read_until(b'\n', &mut self.buffer)? == 0 {
+            return Ok(None);
+        }
+        if self.buffer.last() == Some(&b'\n') {
+            self.buffer.pop();
+            return Ok(Some(Line { number, text: Ok(&self.buffer), torn: false }));
+        }
+        if (self.buffer.len() as u64) < LONGEST_LINE {
+            return Ok(Some(Line { number, text: Ok(&self.buffer), torn: true }));
+        }
+        let torn = self.skip_rest()?;
+        Ok(Some(Line { number, text: Err("it is far too long".to_owned()), torn }))
+    }
+
+    /// Skips to the next line; whether there is none.
+    fn skip_rest(&mut self) -> io::Result<bool> {
+        loop {
+            let (found, used) = match self.input.fill_buf()? {
+                [] => return Ok(true),
+                some => match some.iter().position(|&byte| byte == b'\n') {
+                    Some(at) => (true, at + 1),
+                    None => (false, some.len()),
+                },
+            };
+            self.input.consume(used);
+            if found {
+                return Ok(false);
+            }
+        }
+    }
+}
