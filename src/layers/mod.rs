@@ -4,9 +4,11 @@
 //!
 //! **Never** decides anything.
 
+mod neighbours;
 mod syntax;
 mod unit;
 
+pub use neighbours::Neighbours;
 pub use syntax::{
     Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions, near_names,
 };

@@ -5,10 +5,28 @@
 //! **Never** knows what a radiance is.
 
 mod attribute;
+mod confine;
+mod door;
+mod index;
+mod library_file;
 mod library_types;
+mod messages;
+mod pipe;
+mod read_error;
+mod reader;
 mod samples;
+mod serve;
+mod storage;
+mod turns;
 mod writer;
 
 pub use attribute::{Attribute, AttributeValue};
+pub use confine::confine;
+pub use index::{Dimension, FileIndex, Group, Storage, Variable};
+pub use read_error::ReadError;
+pub use read_error::ReadFault;
+pub use reader::{FileReader, ReadLimits, ReaderProgram};
+pub(crate) use samples::with_values;
 pub use samples::{Samples, ValueKind};
+pub use serve::serve;
 pub use writer::{FileFormat, NetcdfWriter, VariableDraft, WriterError};

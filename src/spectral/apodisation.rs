@@ -8,7 +8,7 @@ pub const HAMMING_CENTRE: f64 = 0.54;
 pub const HAMMING_SIDE: f64 = 0.23;
 /// Standard deviation of white noise after the running mean, relative to before:
 /// `sqrt(0.54^2 + 2 * 0.23^2)`.
-pub const HAMMING_NOISE_FACTOR: f64 = 0.630_396_700_498_797_8;
+pub const HAMMING_NOISE_FACTOR: f64 = 0.630_396_700_498_979_4;
 
 /// The Hamming-apodised radiances (any unit) of unapodised `radiances`, both in the order of the
 /// file and as long as the axis.
@@ -27,4 +27,67 @@ pub fn hamming3(axis: &ChannelAxis, radiances: &[f64]) -> Vec<f64> {
         }
     }
     apodised
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn axis(wavenumbers: &[f64]) -> ChannelAxis {
+        ChannelAxis::new(wavenumbers.to_vec()).unwrap()
+    }
+
+    /// Equality that takes missing for missing.
+    fn assert_same(found: &[f64], expected: &[f64]) {
+        assert_eq!(found.len(), expected.len());
+        for (found, expected) in found.iter().zip(expected) {
+            assert!(found == expected || found.is_nan() && expected.is_nan(), "{found} {expected}");
+        }
+    }
+
+    const NONE: f64 = f64::NAN;
+
+    #[test]
+    fn a_single_channel_spreads_to_its_neighbours() {
+        let axis = axis(&[650.0, 650.625, 651.25, 651.875, 652.5]);
+        let apodised = hamming3(&axis, &[0.0, 0.0, 1.0, 0.0, 0.0]);
+        assert_same(&apodised, &[NONE, 0.23, 0.54, 0.23, NONE]);
+    }
+
+    #[test]
+    fn a_flat_spectrum_stays_flat() {
+        let axis = axis(&[650.0, 650.625, 651.25, 651.875]);
+        assert_same(&hamming3(&axis, &[8.0; 4]), &[NONE, 8.0, 8.0, NONE]);
+    }
+
+    #[test]
+    fn gaps_are_never_crossed() {
+        let axis = axis(&[1.0, 2.0, 3.0, 4.0, 50.0, 51.0, 52.0, 53.0].map(|step| 600.0 + step));
+        let apodised = hamming3(&axis, &[1.0; 8]);
+        assert_same(&apodised, &[NONE, 1.0, 1.0, NONE, NONE, 1.0, 1.0, NONE]);
+    }
+
+    #[test]
+    fn a_missing_channel_takes_its_neighbours_along() {
+        let axis = axis(&[1.0, 2.0, 3.0, 4.0, 5.0, 6.0].map(|step| 600.0 + step));
+        let apodised = hamming3(&axis, &[1.0, 1.0, NONE, 1.0, 1.0, 1.0]);
+        assert_same(&apodised, &[NONE, NONE, NONE, NONE, 1.0, NONE]);
+    }
+
+    #[test]
+    fn descending_axes_give_the_same() {
+        let up = axis(&[650.0, 651.0, 652.0, 653.0]);
+        let down = axis(&[653.0, 652.0, 651.0, 650.0]);
+        let mut reversed = hamming3(&down, &[4.0, 1.0, 7.0, 2.0]);
+        reversed.reverse();
+        assert_same(&reversed, &hamming3(&up, &[2.0, 7.0, 1.0, 4.0]));
+    }
+
+    #[test]
+    fn weights_and_noise() {
+        assert_eq!(HAMMING_CENTRE + 2.0 * HAMMING_SIDE, 1.0);
+        let factor = HAMMING_CENTRE.hypot(HAMMING_SIDE.hypot(HAMMING_SIDE));
+        // A few roundings of f64.
+        assert!((HAMMING_NOISE_FACTOR / factor - 1.0).abs() < 1e-15, "{factor}");
+    }
 }

@@ -85,3 +85,70 @@ fn share_below(x: f64) -> f64 {
         .sum();
     NORMALISATION * x.powi(3) * (1.0 / 3.0 - x / 8.0 + even)
 }
+
+#[cfg(test)]
+mod tests {
+    use proptest::prelude::*;
+
+    use super::*;
+    use crate::spectral::planck;
+
+    #[test]
+    fn both_series_agree_where_they_meet() {
+        for x in [0.5, 0.8, 1.0, 1.2] {
+            // Both reach full precision around the split; a few roundings of f64.
+            assert!((share_below(x) + share_above(x) - 1.0).abs() < 2e-15, "{x}");
+        }
+    }
+
+    #[test]
+    fn the_ends_are_nothing_and_all() {
+        assert_eq!(share_above(f64::INFINITY), 0.0);
+        assert_eq!(share_below(0.0), 0.0);
+        let all = band_integral(0.0, f64::INFINITY, 288.15);
+        assert!((all / total_radiance(288.15) - 1.0).abs() < 1e-15);
+    }
+
+    #[test]
+    fn far_infrared_intervals_keep_their_digits() {
+        // For small x the radiance is c1 / c2 T nu^2 to first order (Rayleigh and Jeans), so the
+        // integral is c1 / (3 c2) T (b^3 - a^3) (1 - (3 / 8) x ...), with x up to 5e-5 here.
+        let (from, to, temperature) = (0.009, 0.01, 300.0);
+        let cubes = 1e-6 - 0.729e-6;
+        let expected = 1e-3 * crate::spectral::constants::C1 / C2 * temperature * cubes / 3.0;
+        assert!((band_integral(from, to, temperature) / expected - 1.0).abs() < 1e-4);
+    }
+
+    proptest! {
+        #[test]
+        fn intervals_add_up(
+            from in 100.0..1000.0f64,
+            first in 1.0..500.0f64,
+            second in 1.0..500.0f64,
+            temperature in 180.0..330.0f64,
+        ) {
+            let (middle, to) = (from + first, from + first + second);
+            let parts = band_integral(from, middle, temperature)
+                + band_integral(middle, to, temperature);
+            let whole = band_integral(from, to, temperature);
+            // Differences of shares that are rounded at 1e-16 each.
+            prop_assert!((parts - whole).abs() < 1e-15 * total_radiance(temperature));
+        }
+
+        /// A narrow interval against the Planck function at its middle, by Simpson's rule.
+        #[test]
+        fn a_narrow_interval_is_the_planck_function(
+            middle in 100.0..3000.0f64,
+            temperature in 180.0..330.0f64,
+        ) {
+            let half = 0.5;
+            let radiances = [-half, 0.0, half].map(|step| planck(middle + step, temperature));
+            let simpson = 1e-3 * (radiances[0] + 4.0 * radiances[1] + radiances[2]) / 6.0;
+            let integral = band_integral(middle - half, middle + half, temperature);
+            // Simpson is off by less than (c2 h / T)^4 / 180, 1e-11; the difference of shares
+            // loses digits by their size, 1e-16 of the whole.
+            let rounding = 4e-16 * total_radiance(temperature);
+            prop_assert!((integral - simpson).abs() < 1e-9 * simpson + rounding);
+        }
+    }
+}

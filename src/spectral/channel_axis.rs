@@ -148,3 +148,89 @@ fn local_spacings(ascending: &[f64], segments: &[Range<usize>]) -> Vec<f64> {
         .map(|(place, segment)| in_segment(place, segment).unwrap_or_else(|| lone(place)))
         .collect()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn axis(wavenumbers: &[f64]) -> ChannelAxis {
+        ChannelAxis::new(wavenumbers.to_vec()).unwrap()
+    }
+
+    #[test]
+    fn senseless_axes_are_refused() {
+        assert_eq!(ChannelAxis::new(Vec::new()), Err(AxisError::Empty));
+        for senseless in [f64::NAN, 0.0, -650.0, f64::INFINITY] {
+            let refused = ChannelAxis::new(vec![650.0, senseless]);
+            assert_eq!(refused, Err(AxisError::NoWavenumber { index: 1 }));
+        }
+    }
+
+    #[test]
+    fn the_nearest_channel_knows_its_surroundings() {
+        let axis = axis(&[650.0, 650.625, 651.25]);
+        let nearest = axis.nearest(650.7);
+        assert_eq!((nearest.index, nearest.wavenumber), (1, 650.625));
+        assert_eq!(nearest.local_spacing, 0.625);
+        // 650.7 is no binary number: one rounding.
+        assert!((nearest.distance - 0.075).abs() < 1e-12);
+        assert_eq!(axis.nearest(650.3125).index, 0, "halfway the lower one");
+        assert_eq!(axis.nearest(1.0).index, 0);
+        assert_eq!(axis.nearest(5000.0).index, 2);
+    }
+
+    #[test]
+    fn the_order_of_the_file_is_kept() {
+        let axis = axis(&[900.0, 700.0, 800.0]);
+        assert_eq!(axis.wavenumbers(), [900.0, 700.0, 800.0]);
+        assert_eq!(axis.sorted(), [1, 2, 0]);
+        assert_eq!(axis.nearest(890.0).index, 0);
+        assert_eq!(axis.between(700.0, 800.0), [1, 2]);
+        assert_eq!(axis.between(1000.0, 600.0), Vec::<usize>::new());
+    }
+
+    #[test]
+    fn refused_channels_are_passed_over() {
+        let axis = axis(&[650.0, 651.0, 652.0]);
+        assert_eq!(axis.nearest_among(650.9, |index| index != 1).map(|near| near.index), Some(0));
+        assert_eq!(axis.nearest_among(651.2, |index| index != 1).map(|near| near.index), Some(2));
+        assert_eq!(axis.nearest_among(651.0, |_| false), None);
+    }
+
+    #[test]
+    fn spacing_stops_at_gaps() {
+        let axis = axis(&[650.0, 651.0, 652.0, 653.0, 900.0, 902.0, 904.0, 906.0]);
+        assert_eq!(axis.segments(), [0..4, 4..8]);
+        assert_eq!(axis.nearest(660.0).local_spacing, 1.0);
+        assert_eq!(axis.nearest(890.0).local_spacing, 2.0);
+    }
+
+    #[test]
+    fn a_lone_channel_has_a_spacing_too() {
+        assert_eq!(axis(&[900.0]).nearest(900.0).local_spacing, 9.0);
+        let islands = axis(&[650.0, 651.0, 652.0, 700.0, 748.0, 749.0, 750.0]);
+        assert_eq!(islands.nearest(700.0).local_spacing, 1.0);
+    }
+
+    #[test]
+    fn equal_wavenumbers_are_borne() {
+        let axis = axis(&[650.0, 651.0, 651.0, 652.0]);
+        assert_eq!(axis.sorted(), [0, 1, 2, 3]);
+        assert_eq!(axis.nearest(651.0).index, 1, "the first in the file");
+    }
+
+    proptest::proptest! {
+        #[test]
+        fn every_channel_is_nearest_to_itself(
+            wavenumbers in proptest::collection::vec(600.0..2800.0f64, 1..60),
+        ) {
+            let axis = ChannelAxis::new(wavenumbers.clone()).unwrap();
+            for wavenumber in &wavenumbers {
+                proptest::prop_assert_eq!(axis.nearest(*wavenumber).wavenumber, *wavenumber);
+            }
+            let covered: usize = axis.segments().iter().map(|segment| segment.len()).sum();
+            proptest::prop_assert_eq!(covered, wavenumbers.len());
+            proptest::prop_assert_eq!(axis.between(0.0, 1e4).len(), wavenumbers.len());
+        }
+    }
+}

@@ -4,10 +4,10 @@
 
 use std::f64::consts::PI;
 
+pub use crate::units::LIGHT_SPEED;
+
 /// Planck constant, J s (exact).
 pub const PLANCK: f64 = 6.626_070_15e-34;
-/// Speed of light in vacuum, m s-1 (exact).
-pub const LIGHT_SPEED: f64 = 299_792_458.0;
 /// Boltzmann constant, J K-1 (exact).
 pub const BOLTZMANN: f64 = 1.380_649e-23;
 /// First radiation constant for spectral radiance, 2 h c^2, W m2 sr-1.
@@ -22,3 +22,22 @@ pub const C2: f64 = C2_METRE * 100.0;
 pub const STEFAN_BOLTZMANN: f64 =
     2.0 * PI * PI * PI * PI * PI * BOLTZMANN * BOLTZMANN * BOLTZMANN * BOLTZMANN
         / (15.0 * PLANCK * PLANCK * PLANCK * LIGHT_SPEED * LIGHT_SPEED);
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn derived_constants() {
+        // Worked with 50 digits from the exact h, c and k (CODATA 2018 lists the same to 10
+        // digits); a few roundings of f64 are allowed.
+        for (computed, expected) in [
+            (C1L, 1.191_042_972_397_188e-16),
+            (C1, 1.191_042_972_397_188_4e-5),
+            (C2, 1.438_776_877_503_933_8),
+            (STEFAN_BOLTZMANN, 5.670_374_419_184_429e-8),
+        ] {
+            assert!((computed / expected - 1.0).abs() < 2e-15, "{computed} {expected}");
+        }
+    }
+}

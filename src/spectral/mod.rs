@@ -14,6 +14,8 @@ pub mod fast;
 mod noise;
 mod planck;
 mod planck_forms;
+#[cfg(test)]
+mod reference_tables;
 mod segments;
 
 pub use absorption_bands::{ABSORPTION_BANDS, AbsorptionBand};

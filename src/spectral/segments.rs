@@ -4,10 +4,10 @@ use std::ops::Range;
 
 /// A spacing this many times the usual one around it is a gap. One channel left out makes 2.
 const GAP: f64 = 1.8;
-/// Spacings on each side that count as "around".
-const WINDOW: usize = 8;
-/// With fewer spacings than this on a side, both sides are taken together.
-const ENOUGH: usize = 3;
+/// Spacings on each side that count as "around": few, so that one stretch is not judged by the
+/// sampling of the next, and three, so that a second gap close by does not count as usual. With
+/// fewer on a side, both sides are taken together.
+const WINDOW: usize = 3;
 
 /// Splits ascending wavenumbers into ranges without gaps.
 pub fn segments(ascending: &[f64]) -> Vec<Range<usize>> {
@@ -29,7 +29,7 @@ pub fn segments(ascending: &[f64]) -> Vec<Range<usize>> {
 fn is_gap(spacings: &[f64], position: usize) -> bool {
     let before = &spacings[position.saturating_sub(WINDOW)..position];
     let behind = &spacings[position + 1..(position + 1 + WINDOW).min(spacings.len())];
-    let usual = match (before.len() >= ENOUGH, behind.len() >= ENOUGH) {
+    let usual = match (before.len() == WINDOW, behind.len() == WINDOW) {
         (true, true) => lower_median(before).max(lower_median(behind)),
         (true, false) if behind.is_empty() => lower_median(before),
         (false, true) if before.is_empty() => lower_median(behind),
@@ -100,6 +100,17 @@ mod tests {
         spacings.push(402.5);
         spacings.extend([2.5; 20]);
         assert_eq!(of_spacings(&spacings), [0..21, 21..42, 42..63]);
+    }
+
+    #[test]
+    fn short_stretches_beside_others_stay_whole() {
+        assert_eq!(of_spacings(&[1.0, 1.0, 1.0, 247.0, 2.0, 2.0, 2.0]), [0..4, 4..8]);
+        assert_eq!(of_spacings(&[2.0, 2.0, 2.0, 247.0, 1.0, 1.0, 1.0]), [0..4, 4..8]);
+    }
+
+    #[test]
+    fn gaps_close_to_each_other_are_seen() {
+        assert_eq!(of_spacings(&[1.0, 1.0, 1.0, 2.0, 1.0, 2.0, 1.0, 1.0]), [0..4, 4..6, 6..9]);
     }
 
     #[test]

@@ -8,6 +8,7 @@ mod angle;
 mod decimal;
 mod dimension;
 mod error;
+mod light_speed;
 mod product;
 mod quantities;
 mod radiance;
@@ -17,6 +18,7 @@ mod temperature;
 
 pub use angle::AngleUnit;
 pub use error::UnitError;
+pub use light_speed::LIGHT_SPEED;
 pub use quantities::{Kelvin, Radiance, Wavenumber};
 pub use radiance::{RadianceUnit, SpectralDensity};
 pub use spectral_position::{SpectralUnit, wavenumber_from_text};

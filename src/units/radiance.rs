@@ -3,6 +3,7 @@
 use super::decimal::Decimal;
 use super::dimension::Dimension;
 use super::error::{UnitError, excerpt};
+use super::light_speed::LIGHT_SPEED_CENTIMETRES;
 use super::product::{self, Malformed, Product};
 
 /// What a spectral radiance is counted per. These are different quantities: going from one to
@@ -27,9 +28,6 @@ pub struct RadianceUnit {
 
 const ACCEPTED: &str = "accepted is a radiance per wavenumber such as mW m-2 sr-1 (cm-1)-1, \
      per wavelength such as W m-2 sr-1 um-1, or per frequency such as W m-2 sr-1 Hz-1";
-
-/// Speed of light in cm s-1: wavenumber in cm-1 times this is frequency in Hz. Exact in the SI.
-const LIGHT_SPEED_CENTIMETRES: f64 = 29_979_245_800.0;
 
 impl RadianceUnit {
     /// mW m-2 sr-1 (cm-1)-1, in which the program works.

@@ -11,9 +11,10 @@ use winnow::{ModalResult, Parser};
 
 use super::mistake::Mistake;
 use super::near_names::near_names;
-use super::place::{LengthOrWavenumber, Place};
+use super::place::Place;
 use super::tree::{Infix, Kind, Node, Prefix, Quantity, Span, Where};
 use super::vocabulary::{Arity, Callable, JOINING_WORDS, callable, example_of, functions};
+use crate::units::SpectralUnit;
 
 /// Bytes of a text.
 const LONGEST: usize = 4096;
@@ -301,19 +302,36 @@ fn place(input: &mut Input<'_>) -> Read<(Place, bool)> {
     let start = input.current_token_start();
     let number = number(input, EXPECTED)?;
     spaces(input)?;
-    let rest = rest(input);
-    let unit = LengthOrWavenumber::at_start_of(rest);
-    if let Some((_, length)) = unit {
-        input.next_slice(length);
-    } else if rest.starts_with(is_in_word) {
-        return unexpected(input, "a unit: cm-1, m-1, um or nm");
-    }
+    let unit = unit(input)?;
     spaces(input)?;
     let end = input.state.token_end;
-    let of_number = LengthOrWavenumber::PerCentimetre;
-    match Place::new(number, unit.map_or(of_number, |(unit, _)| unit)) {
+    match Place::new(number, unit.unwrap_or(SpectralUnit::PerCentimetre)) {
         Some(place) => Ok((place, unit.is_some())),
         None => wrong(Mistake::new(start..end, "no wave is that long or that short", EXPECTED)),
+    }
+}
+
+/// A unit, in any spelling of files; it reaches to what ends a place.
+fn unit(input: &mut Input<'_>) -> Read<Option<SpectralUnit>> {
+    const EXPECTED: &str = "a unit: cm-1, m-1, um, nm, Hz, GHz or THz";
+    let start = input.current_token_start();
+    let rest = rest(input);
+    if !rest.starts_with(char::is_alphabetic) {
+        return Ok(None);
+    }
+    let ends = [rest.find([')', ',']), rest.find("..")];
+    let length = ends.into_iter().flatten().min().unwrap_or(rest.len());
+    let written = rest[..length].trim_end();
+    match SpectralUnit::parse(written) {
+        Ok(unit) => {
+            input.next_slice(written.len());
+            Ok(Some(unit))
+        }
+        Err(_) => {
+            let what =
+                format!("\"{}\" is no unit of a spectrum", crate::system::clean_text(written));
+            wrong(Mistake::new(start..start + written.len(), what, EXPECTED))
+        }
     }
 }
 

@@ -2,9 +2,10 @@
 
 use proptest::prelude::*;
 
-use super::place::{LengthOrWavenumber, Place};
+use super::place::Place;
 use super::tree::{Function, Infix, Kind, Node, Prefix, Quantity, Statistic, Where};
 use super::{Expression, Mistake};
+use crate::units::SpectralUnit;
 
 fn plain(text: &str) -> String {
     Expression::parse(text).unwrap_or_else(|error| panic!("{error}")).to_string()
@@ -68,6 +69,7 @@ fn places_and_intervals_are_read_with_their_units() {
         ("bt(900)", "bt(900)"),
         ("bt( 900 cm-1 )", "bt(900)"),
         ("bt(900cm^-1)", "bt(900)"),
+        ("bt(27 THz)", "bt(27THz)"),
         ("bt(11.1um)", "bt(11.1um)"),
         ("bt(11.1 \u{b5}m)", "bt(11.1um)"),
         ("bt(11.1\u{3bc}m)", "bt(11.1um)"),
@@ -206,19 +208,20 @@ fn trees() -> impl Strategy<Value = Node> {
             prop::collection::vec(inner, 2..4).prop_map(|all| Kind::Call(Function::Max, all)),
             (boxed, 1.0f64..3000.0).prop_map(|(operand, value)| Kind::Planck(
                 operand,
-                Place::new(value, LengthOrWavenumber::PerCentimetre).unwrap()
+                Place::new(value, SpectralUnit::PerCentimetre).unwrap()
             )),
         ]
         .prop_map(node)
     })
 }
 
-fn unit() -> impl Strategy<Value = LengthOrWavenumber> {
+fn unit() -> impl Strategy<Value = SpectralUnit> {
     prop_oneof![
-        Just(LengthOrWavenumber::PerCentimetre),
-        Just(LengthOrWavenumber::PerMetre),
-        Just(LengthOrWavenumber::Micrometre),
-        Just(LengthOrWavenumber::Nanometre),
+        Just(SpectralUnit::PerCentimetre),
+        Just(SpectralUnit::PerMetre),
+        Just(SpectralUnit::Micrometre),
+        Just(SpectralUnit::Nanometre),
+        Just(SpectralUnit::Terahertz),
     ]
 }
 

@@ -2,9 +2,10 @@
 
 use std::fmt;
 
-use super::place::{LengthOrWavenumber, Place};
+use super::place::Place;
 use super::tree::{Infix, Kind, Node, Prefix, Quantity, Where};
 use super::vocabulary::{Callable, function_name, name_of};
+use crate::units::SpectralUnit;
 
 /// How tightly a part holds together; the grammar's levels from the loosest.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -51,7 +52,7 @@ impl fmt::Display for Place {
     fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
         write_number(self.value(), out)?;
         match self.unit() {
-            LengthOrWavenumber::PerCentimetre => Ok(()),
+            SpectralUnit::PerCentimetre => Ok(()),
             unit => out.write_str(unit.label()),
         }
     }

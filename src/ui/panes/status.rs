@@ -1,6 +1,11 @@
 //! The status line (what happened, what is pending, the counts) and the line of hints below it.
 
-use crate::ui::colour::Tone;
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+use unicode_width::UnicodeWidthStr;
+
+use crate::ui::colour::{Theme, Tone};
+use crate::ui::widgets::{clip, put, put_right};
 
 /// Everything the status line shows, from the left; what does not fit is left away from the end of
 /// each side, the message last.
@@ -21,4 +26,88 @@ pub struct Hint<'a> {
     pub key: &'a str,
     /// What it does, in a word or two.
     pub does: &'a str,
+}
+
+/// Columns that the message keeps before the facts are cut.
+const MESSAGE: usize = 24;
+
+/// Draws the status line.
+pub fn draw(view: &StatusView<'_>, theme: &Theme, line: Rect, buffer: &mut Buffer) {
+    let Some(line) = clip(line, buffer) else { return };
+    let line = Rect { x: line.x + 1.min(line.width), width: line.width.saturating_sub(2), ..line };
+    let gap = if theme.ascii { " | " } else { " · " };
+    let keep = view.message.width().min(MESSAGE) + usize::from(!view.message.is_empty());
+    let mut room = usize::from(line.width).saturating_sub(keep);
+    let mut shown = 0;
+    for (text, _) in view.facts {
+        let needed = text.width() + if shown > 0 { gap.width() } else { 0 };
+        if needed > room {
+            break;
+        }
+        room -= needed;
+        shown += 1;
+    }
+    let mut right = line;
+    for (index, (text, tone)) in view.facts[..shown].iter().enumerate().rev() {
+        right.width -= put_right(right, text, theme.style(*tone), theme.ascii, buffer);
+        if index > 0 {
+            right.width -= put_right(right, gap, theme.style(Tone::Faint), theme.ascii, buffer);
+        }
+    }
+    let left = Rect { width: right.width.saturating_sub(u16::from(shown > 0)), ..line };
+    put(left, view.message, theme.style(view.tone), theme.ascii, buffer);
+}
+
+/// Draws as many hints as fit, in order.
+pub fn draw_hints(hints: &[Hint<'_>], theme: &Theme, line: Rect, buffer: &mut Buffer) {
+    let Some(line) = clip(line, buffer) else { return };
+    let mut rest =
+        Rect { x: line.x + 1.min(line.width), width: line.width.saturating_sub(2), ..line };
+    for hint in hints {
+        let needed = hint.key.width() + 1 + hint.does.width();
+        if needed > usize::from(rest.width) {
+            break;
+        }
+        for (text, tone) in [(hint.key, Tone::Accent), (" ", Tone::Plain), (hint.does, Tone::Faint)]
+        {
+            let used = put(rest, text, theme.style(tone), theme.ascii, buffer);
+            rest = Rect { x: rest.x + used, width: rest.width - used, ..rest };
+        }
+        let gap = 2.min(rest.width);
+        rest = Rect { x: rest.x + gap, width: rest.width - gap, ..rest };
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::ui::widgets::{Screen, THEME};
+
+    #[test]
+    fn the_least_important_facts_make_room_for_the_message() {
+        let facts = [
+            ("2 pending".to_string(), Tone::Warning),
+            ("128 flagged".to_string(), Tone::Plain),
+            ("900 not assessed".to_string(), Tone::Plain),
+        ];
+        let view = StatusView { message: "flagged 128 as cloudy", tone: Tone::Good, facts: &facts };
+        for (width, line) in [
+            (80, " flagged 128 as cloudy               2 pending · 128 flagged · 900 not assessed"),
+            (50, " flagged 128 as cloudy     2 pending · 128 flagged"),
+            (24, " flagged 128 as cloudy"),
+            (12, " flagged 1…"),
+        ] {
+            let mut screen = Screen::new(width, 1);
+            draw(&view, &THEME, screen.area(), &mut screen.buffer);
+            assert_eq!(screen.lines(), [line]);
+        }
+    }
+
+    #[test]
+    fn hints_that_do_not_fit_are_left_away_whole() {
+        let hints = [Hint { key: "f", does: "flag" }, Hint { key: "?", does: "help" }];
+        let mut screen = Screen::new(12, 1);
+        draw_hints(&hints, &THEME, screen.area(), &mut screen.buffer);
+        assert_eq!(screen.lines(), [" f flag"]);
+    }
 }

@@ -1,0 +1,15 @@
+//! Which footprints lie beside which on the ground.
+
+mod array;
+mod ground;
+mod kd_tree;
+mod lists;
+mod positions;
+mod spacing;
+mod statistics;
+
+#[cfg(test)]
+mod ground_tests;
+
+pub use lists::{MOST, Neighbours};
+pub use statistics::{FEWEST, neighbourhood};
