@@ -124,4 +124,32 @@ impl Theme {
             }
         }
     }
+
+    /// The look of a sign without a colour of its own on a coloured ground, or on none.
+    pub fn sign_on(&self, has_ground: bool, light_ground: bool) -> Style {
+        match (self.depth, has_ground, light_ground) {
+            (ColourDepth::None, ..) | (_, false, _) => Style::new(),
+            (ColourDepth::Sixteen, _, true) => Style::new().fg(Color::Black),
+            (ColourDepth::Sixteen, _, false) => Style::new().fg(Color::White),
+            (_, _, true) => Style::new().fg(Color::Indexed(16)),
+            (_, _, false) => Style::new().fg(Color::Indexed(231)),
+        }
+    }
+
+    /// The look of what has to be found at once: the cursor, pins.
+    pub fn mark(&self) -> Style {
+        let style = Style::new().add_modifier(Modifier::BOLD);
+        match (self.depth, self.background) {
+            (ColourDepth::None, _) => style.add_modifier(Modifier::REVERSED),
+            (ColourDepth::Sixteen, Background::Dark) => style.fg(Color::Black).bg(Color::White),
+            (ColourDepth::Sixteen, Background::Light) => style.fg(Color::White).bg(Color::Black),
+            (_, Background::Dark) => style.fg(Color::Indexed(16)).bg(Color::Indexed(231)),
+            (_, Background::Light) => style.fg(Color::Indexed(231)).bg(Color::Indexed(16)),
+        }
+    }
+
+    /// A look made to stand out from its like: something that is selected.
+    pub fn reversed(&self, style: Style) -> Style {
+        style.add_modifier(Modifier::REVERSED)
+    }
 }

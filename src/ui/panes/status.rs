@@ -93,7 +93,7 @@ mod tests {
         let view = StatusView { message: "flagged 128 as cloudy", tone: Tone::Good, facts: &facts };
         for (width, line) in [
             (80, " flagged 128 as cloudy               2 pending · 128 flagged · 900 not assessed"),
-            (50, " flagged 128 as cloudy     2 pending · 128 flagged"),
+            (50, " flagged 128 as cloudy    2 pending · 128 flagged"),
             (24, " flagged 128 as cloudy"),
             (12, " flagged 1…"),
         ] {
