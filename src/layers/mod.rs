@@ -4,12 +4,20 @@
 //!
 //! **Never** decides anything.
 
+mod evaluation;
+mod first_look;
+mod names;
 mod neighbours;
 mod syntax;
 mod unit;
+mod value_range;
 
+pub use evaluation::{Layer, LayerError, channels_needed, evaluate, evaluate_all};
+pub use first_look::{FIRST_LOOK, suggestions};
+pub use names::{Channel, NameError, Names, Values};
 pub use neighbours::Neighbours;
 pub use syntax::{
     Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions, near_names,
 };
 pub use unit::LayerUnit;
+pub use value_range::ValueRange;

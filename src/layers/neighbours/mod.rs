@@ -12,4 +12,4 @@ mod statistics;
 mod ground_tests;
 
 pub use lists::{MOST, Neighbours};
-pub use statistics::{FEWEST, neighbourhood};
+pub use statistics::neighbourhood;

@@ -15,6 +15,5 @@ mod grammar_tests;
 pub use expression::{Expression, ExpressionError};
 pub use mistake::Mistake;
 pub use near_names::near_names;
-pub use place::Place;
 pub use tree::{Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where};
 pub use vocabulary::{FRIENDLY_NAMES, FriendlyName, functions};

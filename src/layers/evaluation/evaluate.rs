@@ -1,0 +1,147 @@
+//! Evaluation over all footprints of a granule.
+
+use super::error::LayerError;
+use super::gather::{Column, gather};
+use super::layer::Layer;
+use super::leaves::Leaf;
+use super::plan::{Output, Plan, Step};
+use super::program::Source;
+use crate::layers::names::{Channel, Names};
+use crate::layers::neighbours::neighbourhood;
+use crate::layers::syntax::Expression;
+
+/// The numbers of one expression.
+///
+/// # Errors
+/// A name that means nothing here, or a place in the spectrum without a channel.
+pub fn evaluate(expression: &Expression, names: &dyn Names) -> Result<Layer, LayerError> {
+    let (plan, output) = Plan::of_one(expression, names);
+    let output = output?;
+    Ok(Work::done(&plan, names).layer(expression, &output, &plan, names))
+}
+
+/// The numbers of several expressions, in their order. All channels are gathered in one pass; what
+/// two expressions share is worked out once. Each number is the same as if its expression were
+/// evaluated alone, with any number of threads.
+pub fn evaluate_all(
+    expressions: &[&Expression],
+    names: &dyn Names,
+) -> Vec<Result<Layer, LayerError>> {
+    let (plan, outputs) = Plan::of(expressions, names);
+    let work = Work::done(&plan, names);
+    let layer = |(output, expression): (Result<Output, LayerError>, &&Expression)| {
+        Ok(work.layer(expression, &output?, &plan, names))
+    };
+    outputs.into_iter().zip(expressions).map(layer).collect()
+}
+
+/// The channels that must have been read before `expressions` can be evaluated, each once and in
+/// the file's order. Expressions that can't be evaluated ask for nothing.
+pub fn channels_needed(expressions: &[&Expression], names: &dyn Names) -> Vec<Channel> {
+    let (plan, _) = Plan::of(expressions, names);
+    let mut channels: Vec<Channel> =
+        plan.leaves.iter().flat_map(|leaf| leaf.channels().iter().copied()).collect();
+    channels.sort_by_key(|channel| (channel.band, channel.index));
+    channels.dedup_by_key(|channel| (channel.band, channel.index));
+    channels
+}
+
+/// All columns.
+struct Work {
+    leaves: Vec<Column>,
+    steps: Vec<Vec<f64>>,
+}
+
+impl Work {
+    fn done(plan: &Plan, names: &dyn Names) -> Self {
+        let mut work = Self { leaves: gather(&plan.leaves, names), steps: Vec::new() };
+        for step in &plan.steps {
+            let column = match step {
+                Step::Pointwise(program) => {
+                    program.run(names.footprints(), &|source| work.column(source))
+                }
+                Step::Neighbourhood(statistic, source) => {
+                    neighbourhood(*statistic, work.column(*source), names.neighbours())
+                }
+            };
+            work.steps.push(column);
+        }
+        work
+    }
+
+    fn layer(
+        &self,
+        expression: &Expression,
+        output: &Output,
+        plan: &Plan,
+        names: &dyn Names,
+    ) -> Layer {
+        Layer {
+            expression: expression.text().to_owned(),
+            unit: output.unit,
+            values: self.column(output.source).to_vec(),
+            channels: single_channels(&plan.leaves, output),
+            notes: notes(&plan.leaves, &self.leaves, output, names),
+        }
+    }
+
+    fn column(&self, source: Source) -> &[f64] {
+        match source {
+            Source::Leaf(at) => &self.leaves[at].values,
+            Source::Step(at) => &self.steps[at],
+        }
+    }
+}
+
+fn single_channels(leaves: &[Leaf], output: &Output) -> Vec<Channel> {
+    let mut channels: Vec<Channel> = Vec::new();
+    for at in &output.leaves {
+        if let Leaf::Channel(_, channel) = &leaves[*at]
+            && !channels.contains(channel)
+        {
+            channels.push(*channel);
+        }
+    }
+    channels
+}
+
+fn notes(leaves: &[Leaf], columns: &[Column], output: &Output, names: &dyn Names) -> Vec<String> {
+    let mut notes: Vec<String> = Vec::new();
+    let used = || output.leaves.iter().map(|at| (&leaves[*at], &columns[*at]));
+    notes.extend(used().filter_map(|(leaf, _)| leaf.note()));
+    let footprints = names.footprints();
+    for (leaf, column) in used() {
+        let place = place(leaf);
+        if column.not_positive > 0 {
+            notes.push(format!(
+                "at {place} {} of {footprints} footprints have a radiance of zero or less, which \
+                 has no brightness temperature",
+                column.not_positive
+            ));
+        }
+        if column.partial > 0 {
+            notes.push(format!(
+                "at {place} {} of {footprints} footprints lack some of the channels; the mean is \
+                 over the others",
+                column.partial
+            ));
+        }
+    }
+    let channels = || used().flat_map(|(leaf, _)| leaf.channels());
+    if channels().any(|channel| !names.is_complete(channel)) {
+        notes.push("the granule is still being read".to_owned());
+    }
+    if output.neighbours {
+        notes.extend(names.neighbours().note().map(str::to_owned));
+    }
+    notes
+}
+
+/// Where in the spectrum a leaf lies, for a note.
+fn place(leaf: &Leaf) -> String {
+    match leaf.channels() {
+        [] => String::new(),
+        [one] => format!("{:.2} cm-1", one.wavenumber),
+        [first, .., last] => format!("{:.2} to {:.2} cm-1", first.wavenumber, last.wavenumber),
+    }
+}

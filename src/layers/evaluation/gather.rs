@@ -1,0 +1,192 @@
+//! The columns that come from the granule: all channels in one pass over the footprints.
+
+use std::ops::Range;
+
+use rayon::prelude::*;
+
+use super::leaves::Leaf;
+use crate::layers::names::{Channel, Names};
+use crate::layers::syntax::Quantity;
+use crate::spectral::{NoTemperature, brightness_temperature};
+
+/// Numbers that one block holds at the most, about 2 MB.
+const BLOCK_NUMBERS: usize = 1 << 18;
+
+/// A column, and what happened on the way.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct Column {
+    /// One number per footprint.
+    pub values: Vec<f64>,
+    /// Footprints whose radiance is zero or less, so that it has no temperature.
+    pub not_positive: usize,
+    /// Footprints for which some of an interval's channels were missing.
+    pub partial: usize,
+}
+
+impl Column {
+    fn append(&mut self, block: &Self) {
+        self.values.extend_from_slice(&block.values);
+        self.not_positive += block.not_positive;
+        self.partial += block.partial;
+    }
+}
+
+/// The columns of all leaves, in their order.
+pub fn gather(leaves: &[Leaf], names: &dyn Names) -> Vec<Column> {
+    let wanted = Wanted::by(leaves, names);
+    let footprints = names.footprints();
+    let block = (BLOCK_NUMBERS / wanted.len().max(1)).clamp(64, 4096);
+    let starts: Vec<usize> = (0..footprints).step_by(block).collect();
+    let blocks: Vec<Vec<Column>> = starts
+        .into_par_iter()
+        .map(|start| wanted.block(leaves, names, start..(start + block).min(footprints)))
+        .collect();
+    let mut columns: Vec<Column> = vec![Column::default(); leaves.len()];
+    for block in &blocks {
+        for (column, part) in columns.iter_mut().zip(block) {
+            column.append(part);
+        }
+    }
+    columns
+}
+
+/// The channels that have to be read, each once.
+struct Wanted {
+    radiances: Vec<Channel>,
+    temperatures: Vec<Channel>,
+}
+
+/// The numbers of one block.
+struct Block<'w> {
+    wanted: &'w Wanted,
+    length: usize,
+    radiances: Vec<f64>,
+    temperatures: Vec<f64>,
+}
+
+impl Wanted {
+    fn by(leaves: &[Leaf], names: &dyn Names) -> Self {
+        let exact = |leaf: &&Leaf| {
+            matches!(leaf, Leaf::Channel(Quantity::BrightnessTemperature, channel)
+                if names.stores_temperature(channel))
+        };
+        let (exact, other): (Vec<&Leaf>, Vec<&Leaf>) = leaves.iter().partition(exact);
+        Self { radiances: unique(&other), temperatures: unique(&exact) }
+    }
+
+    fn len(&self) -> usize {
+        self.radiances.len() + self.temperatures.len()
+    }
+
+    fn block(&self, leaves: &[Leaf], names: &dyn Names, footprints: Range<usize>) -> Vec<Column> {
+        let length = footprints.len();
+        let mut radiances = vec![f64::NAN; self.radiances.len() * length];
+        let mut temperatures = vec![f64::NAN; self.temperatures.len() * length];
+        if !radiances.is_empty() {
+            names.radiances(&self.radiances, footprints.clone(), &mut radiances);
+        }
+        if !temperatures.is_empty() {
+            names.temperatures(&self.temperatures, footprints.clone(), &mut temperatures);
+        }
+        let block = Block { wanted: self, length, radiances, temperatures };
+        leaves.iter().map(|leaf| block.column(leaf, &footprints)).collect()
+    }
+}
+
+/// Channels in the order of the file, so that a reader goes through each spectrum once.
+fn unique(leaves: &[&Leaf]) -> Vec<Channel> {
+    let mut channels: Vec<Channel> =
+        leaves.iter().flat_map(|leaf| leaf.channels().iter().copied()).collect();
+    channels.sort_by_key(place);
+    channels.dedup_by_key(|channel| place(channel));
+    channels
+}
+
+fn place(channel: &Channel) -> (usize, usize) {
+    (channel.band, channel.index)
+}
+
+impl Block<'_> {
+    fn column(&self, leaf: &Leaf, footprints: &Range<usize>) -> Column {
+        match leaf {
+            Leaf::Named(_, named) => {
+                let values = named.values.get(footprints.clone()).unwrap_or_default();
+                let finite = |value: &f64| if value.is_finite() { *value } else { f64::NAN };
+                let mut values: Vec<f64> = values.iter().map(finite).collect();
+                values.resize(self.length, f64::NAN);
+                Column { values, ..Column::default() }
+            }
+            Leaf::Channel(quantity, channel) => self.channel(*quantity, channel),
+            Leaf::Interval { quantity, channels, .. } => self.interval(*quantity, channels),
+        }
+    }
+
+    fn channel(&self, quantity: Quantity, channel: &Channel) -> Column {
+        if let Some(exact) = part(&self.wanted.temperatures, &self.temperatures, channel)
+            && quantity == Quantity::BrightnessTemperature
+        {
+            return Column { values: exact.to_vec(), ..Column::default() };
+        }
+        let radiances = part(&self.wanted.radiances, &self.radiances, channel).unwrap_or_default();
+        let mut column = Column::default();
+        for radiance in radiances {
+            column.push(quantity, channel.wavenumber, *radiance);
+        }
+        column
+    }
+
+    /// Radiances are averaged, negative ones included, for averages of temperatures are biased;
+    /// the mean is inverted at the mean wavenumber of the channels that went into it. A footprint
+    /// for which fewer than half of the channels are there has no mean.
+    fn interval(&self, quantity: Quantity, channels: &[Channel]) -> Column {
+        let parts: Vec<(f64, &[f64])> = channels
+            .iter()
+            .filter_map(|channel| {
+                let part = part(&self.wanted.radiances, &self.radiances, channel)?;
+                Some((channel.wavenumber, part))
+            })
+            .collect();
+        let mut column = Column::default();
+        for footprint in 0..self.length {
+            let (mut count, mut radiances, mut wavenumbers) = (0_usize, 0.0, 0.0);
+            for (wavenumber, part) in &parts {
+                if !part[footprint].is_nan() {
+                    count += 1;
+                    radiances += part[footprint];
+                    wavenumbers += wavenumber;
+                }
+            }
+            if count == 0 || 2 * count < channels.len() {
+                column.values.push(f64::NAN);
+                continue;
+            }
+            column.partial += usize::from(count < channels.len());
+            let count = count as f64;
+            column.push(quantity, wavenumbers / count, radiances / count);
+        }
+        column
+    }
+}
+
+impl Column {
+    fn push(&mut self, quantity: Quantity, wavenumber: f64, radiance: f64) {
+        let value = match quantity {
+            Quantity::Radiance => radiance,
+            Quantity::BrightnessTemperature => match brightness_temperature(wavenumber, radiance) {
+                Ok(temperature) => temperature,
+                Err(error) => {
+                    self.not_positive += usize::from(error == NoTemperature::NotPositive);
+                    f64::NAN
+                }
+            },
+        };
+        self.values.push(if value.is_finite() { value } else { f64::NAN });
+    }
+}
+
+/// The numbers of one channel in a block.
+fn part<'b>(wanted: &[Channel], numbers: &'b [f64], channel: &Channel) -> Option<&'b [f64]> {
+    let at = wanted.binary_search_by_key(&place(channel), place).ok()?;
+    let length = numbers.len() / wanted.len();
+    numbers.get(at * length..(at + 1) * length)
+}

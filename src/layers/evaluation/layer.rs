@@ -1,0 +1,19 @@
+//! A layer: one number per footprint.
+
+use crate::layers::names::Channel;
+use crate::layers::unit::LayerUnit;
+
+/// What an expression gives: one number per footprint.
+#[derive(Debug, Clone)]
+pub struct Layer {
+    /// The expression as typed.
+    pub expression: String,
+    /// What the numbers are measured in, as far as that was followed.
+    pub unit: LayerUnit,
+    /// One per footprint in row-major order; NaN where missing, never infinite.
+    pub values: Vec<f64>,
+    /// The channels that `bt` and `rad` of one place took, in the order of the text.
+    pub channels: Vec<Channel>,
+    /// What a reader of the numbers should know.
+    pub notes: Vec<String>,
+}

@@ -1,0 +1,331 @@
+//! What has to be gathered and worked out for a set of expressions, each thing once.
+
+use std::collections::HashMap;
+
+use super::definitions;
+use super::error::LayerError;
+use super::leaves::Leaf;
+use super::program::{Operation, Program, Source};
+use crate::layers::names::{NameError, Names, Values};
+use crate::layers::syntax::{
+    Expression, Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where,
+};
+use crate::layers::unit::LayerUnit;
+
+/// Steps over columns; a neighbourhood needs the whole column of what stands inside it.
+#[derive(Debug)]
+pub enum Step {
+    /// Footprint by footprint.
+    Pointwise(Program),
+    /// Over the neighbourhood.
+    Neighbourhood(Statistic, Source),
+}
+
+/// Where an expression's numbers come out.
+#[derive(Debug, Clone)]
+pub struct Output {
+    /// The column.
+    pub source: Source,
+    /// Its unit.
+    pub unit: LayerUnit,
+    /// The leaves that it uses, in the order of the text.
+    pub leaves: Vec<usize>,
+    /// Whether it looks at neighbours.
+    pub neighbours: bool,
+}
+
+/// The whole plan.
+pub struct Plan {
+    /// What comes from the granule.
+    pub leaves: Vec<Leaf>,
+    /// What is worked out, in order.
+    pub steps: Vec<Step>,
+}
+
+impl Plan {
+    /// Plans one expression.
+    pub fn of_one(
+        expression: &Expression,
+        names: &dyn Names,
+    ) -> (Self, Result<Output, LayerError>) {
+        let mut planner = Planner::with(names);
+        let output = planner.output(expression);
+        (planner.plan(), output)
+    }
+
+    /// Plans several expressions. One that can't be evaluated takes nothing from the others.
+    pub fn of(
+        expressions: &[&Expression],
+        names: &dyn Names,
+    ) -> (Self, Vec<Result<Output, LayerError>>) {
+        let mut planner = Planner::with(names);
+        let outputs = expressions.iter().map(|expression| planner.output(expression)).collect();
+        (planner.plan(), outputs)
+    }
+}
+
+struct Planner<'n> {
+    names: &'n dyn Names,
+    leaves: Vec<Leaf>,
+    steps: Vec<Step>,
+    definitions: HashMap<String, Result<Output, LayerError>>,
+}
+
+/// One expression on its way.
+struct Draft<'t> {
+    text: &'t str,
+    program: Program,
+    leaves: Vec<usize>,
+    neighbours: bool,
+}
+
+impl<'n> Planner<'n> {
+    fn with(names: &'n dyn Names) -> Self {
+        Self { names, leaves: Vec::new(), steps: Vec::new(), definitions: HashMap::new() }
+    }
+
+    fn plan(self) -> Plan {
+        Plan { leaves: self.leaves, steps: self.steps }
+    }
+
+    fn output(&mut self, expression: &Expression) -> Result<Output, LayerError> {
+        for (name, definition) in definitions::in_order(&[expression], self.names)? {
+            if !self.definitions.contains_key(&name) {
+                let output = self.expression(definition);
+                self.definitions.insert(name, output);
+            }
+        }
+        self.expression(expression)
+    }
+
+    /// What a failed expression had already asked for is taken back.
+    fn expression(&mut self, expression: &Expression) -> Result<Output, LayerError> {
+        let before = (self.leaves.len(), self.steps.len());
+        let mut draft = Draft::of(expression.text());
+        match self.node(expression.tree(), &mut draft) {
+            Ok(unit) => {
+                let source = self.column(draft.program);
+                let (leaves, neighbours) = (draft.leaves, draft.neighbours);
+                Ok(Output { source, unit, leaves, neighbours })
+            }
+            Err(error) => {
+                self.leaves.truncate(before.0);
+                self.steps.truncate(before.1);
+                Err(error)
+            }
+        }
+    }
+
+    fn node(&mut self, node: &Node, draft: &mut Draft<'_>) -> Result<LayerUnit, LayerError> {
+        match &node.kind {
+            Kind::Number(value) => {
+                draft.add(Operation::Constant(*value));
+                Ok(LayerUnit::One)
+            }
+            Kind::Name(name) => self.name(name, &node.span, draft),
+            Kind::Variable(name) => {
+                let key = node.to_string();
+                self.values(key, |names| names.variable(name), &node.span, draft)
+            }
+            Kind::Spectral(quantity, place) => self.spectral(*quantity, place, &node.span, draft),
+            Kind::Planck(temperature, place) => {
+                self.node(temperature, draft)?;
+                draft.add(Operation::Planck(place.wavenumber()));
+                Ok(LayerUnit::Radiance)
+            }
+            Kind::Prefix(prefix, operand) => {
+                let unit = self.node(operand, draft)?;
+                draft.add(Operation::Prefix(*prefix));
+                Ok(if *prefix == Prefix::Not { LayerUnit::Truth } else { unit })
+            }
+            Kind::Infix(infix, left, right) => {
+                let units = (self.node(left, draft)?, self.node(right, draft)?);
+                draft.add(Operation::Infix(*infix));
+                Ok(unit_of_infix(*infix, units.0, units.1))
+            }
+            Kind::Call(function, operands) => self.call(*function, operands, draft),
+            Kind::Neighbourhood(statistic, operand) => {
+                self.neighbourhood(*statistic, operand, draft)
+            }
+        }
+    }
+
+    fn call(
+        &mut self,
+        function: Function,
+        operands: &[Node],
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
+        let mut units = Vec::new();
+        for operand in operands {
+            units.push(self.node(operand, draft)?);
+        }
+        draft.add(Operation::Call(function, operands.len()));
+        let choice = units.into_iter().reduce(LayerUnit::of_choice).unwrap_or(LayerUnit::Unknown);
+        Ok(match function {
+            Function::Min | Function::Max | Function::Abs => choice,
+            _ if choice == LayerUnit::One => LayerUnit::One,
+            _ => LayerUnit::Unknown,
+        })
+    }
+
+    fn neighbourhood(
+        &mut self,
+        statistic: Statistic,
+        operand: &Node,
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
+        let mut inner = Draft::of(draft.text);
+        let unit = self.node(operand, &mut inner)?;
+        let source = self.column(inner.program);
+        let known = self.steps.iter().position(|step| {
+            matches!(step, Step::Neighbourhood(other, of) if (*other, *of) == (statistic, source))
+        });
+        let step = known.unwrap_or_else(|| {
+            self.steps.push(Step::Neighbourhood(statistic, source));
+            self.steps.len() - 1
+        });
+        draft.uses(&inner.leaves);
+        draft.neighbours = true;
+        draft.add(Operation::Load(Source::Step(step)));
+        Ok(match statistic {
+            Statistic::StandardDeviation | Statistic::Range => unit.of_spread(),
+            _ => unit,
+        })
+    }
+
+    fn name(
+        &mut self,
+        name: &str,
+        span: &Span,
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
+        match self.definitions.get(name) {
+            Some(Ok(output)) => {
+                draft.uses(&output.leaves);
+                draft.neighbours |= output.neighbours;
+                draft.add(Operation::Load(output.source));
+                Ok(output.unit)
+            }
+            Some(Err(error)) => Err(error.clone()),
+            None => self.values(name.to_owned(), |names| names.named(name), span, draft),
+        }
+    }
+
+    fn values(
+        &mut self,
+        key: String,
+        ask: impl FnOnce(&dyn Names) -> Result<Values, NameError>,
+        span: &Span,
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
+        let known = self.leaves.iter().position(|leaf| match leaf {
+            Leaf::Named(name, _) => *name == key,
+            _ => false,
+        });
+        let at = match known {
+            Some(at) => at,
+            None => {
+                let values = ask(self.names)
+                    .map_err(|error| LayerError::of_name(draft.text, span, &error))?;
+                self.leaves.push(Leaf::Named(key, values));
+                self.leaves.len() - 1
+            }
+        };
+        draft.load(at);
+        Ok(match &self.leaves[at] {
+            Leaf::Named(_, values) => values.unit,
+            _ => LayerUnit::Unknown,
+        })
+    }
+
+    fn spectral(
+        &mut self,
+        quantity: Quantity,
+        place: &Where,
+        span: &Span,
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
+        let leaf = self
+            .channels(quantity, place)
+            .map_err(|error| LayerError::of_name(draft.text, span, &error))?;
+        let known = self.leaves.iter().position(|other| other.is_same(&leaf));
+        let at = known.unwrap_or_else(|| {
+            self.leaves.push(leaf);
+            self.leaves.len() - 1
+        });
+        draft.load(at);
+        Ok(match quantity {
+            Quantity::BrightnessTemperature => LayerUnit::Kelvin,
+            Quantity::Radiance => LayerUnit::Radiance,
+        })
+    }
+
+    fn channels(&self, quantity: Quantity, place: &Where) -> Result<Leaf, NameError> {
+        match place {
+            Where::At(place) => {
+                Ok(Leaf::Channel(quantity, self.names.channel_near(place.wavenumber())?))
+            }
+            Where::Between(low, high) => {
+                let (low, high) = (low.wavenumber(), high.wavenumber());
+                let channels = self.names.channels_between(low, high);
+                if channels.is_empty() {
+                    return Err(self.no_channel_between(low, high));
+                }
+                Ok(Leaf::Interval { quantity, channels, width: high - low })
+            }
+        }
+    }
+
+    /// An interval without channels; the nearest one is found by asking for its middle.
+    fn no_channel_between(&self, low: f64, high: f64) -> NameError {
+        let wanted = 0.5 * (low + high);
+        match self.names.channel_near(wanted) {
+            Ok(channel) => NameError::NoChannel { wanted, nearest: Some(channel.wavenumber) },
+            Err(error) => error,
+        }
+    }
+
+    /// The column in which a program comes out.
+    fn column(&mut self, program: Program) -> Source {
+        program.only_loads().unwrap_or_else(|| {
+            self.steps.push(Step::Pointwise(program));
+            Source::Step(self.steps.len() - 1)
+        })
+    }
+}
+
+impl<'t> Draft<'t> {
+    fn of(text: &'t str) -> Self {
+        Self { text, program: Program::default(), leaves: Vec::new(), neighbours: false }
+    }
+
+    fn add(&mut self, operation: Operation) {
+        self.program.0.push(operation);
+    }
+
+    fn load(&mut self, leaf: usize) {
+        self.uses(&[leaf]);
+        self.add(Operation::Load(Source::Leaf(leaf)));
+    }
+
+    fn uses(&mut self, leaves: &[usize]) {
+        for leaf in leaves {
+            if !self.leaves.contains(leaf) {
+                self.leaves.push(*leaf);
+            }
+        }
+    }
+}
+
+fn unit_of_infix(infix: Infix, left: LayerUnit, right: LayerUnit) -> LayerUnit {
+    match infix {
+        Infix::Add => left.of_sum(right, false),
+        Infix::Subtract => left.of_sum(right, true),
+        Infix::Multiply => left.of_product(right),
+        Infix::Divide => left.of_quotient(right),
+        Infix::Power if (left, right) == (LayerUnit::One, LayerUnit::One) => LayerUnit::One,
+        Infix::Power => LayerUnit::Unknown,
+        _ => LayerUnit::Truth,
+    }
+}

@@ -1,0 +1,108 @@
+//! What lends names and numbers to expressions: a granule, or anything else with footprints.
+
+use std::ops::Range;
+
+use super::neighbours::Neighbours;
+use super::syntax::Expression;
+use super::unit::LayerUnit;
+
+/// One channel of one band.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Channel {
+    /// Number of the band.
+    pub band: usize,
+    /// Index along the band's spectral axis, in the file's order.
+    pub index: usize,
+    /// Its wavenumber, cm-1.
+    pub wavenumber: f64,
+}
+
+/// Values by name, one per footprint, with what they are measured in.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Values {
+    /// NaN where missing.
+    pub values: Vec<f64>,
+    /// Their unit.
+    pub unit: LayerUnit,
+}
+
+/// Why a name or a place in the spectrum has no numbers here.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+pub enum NameError {
+    /// No channel is near enough.
+    #[error("no channel near {wanted} cm-1; {}", nearest_words(*nearest))]
+    NoChannel {
+        /// The wavenumber asked for, cm-1.
+        wanted: f64,
+        /// The wavenumber of the nearest valid channel, cm-1.
+        nearest: Option<f64>,
+    },
+    /// The name means something, but not in this file.
+    #[error("the file gives no {0}")]
+    NotInFile(String),
+    /// Nothing is called that.
+    #[error("there is no {name}")]
+    Unknown {
+        /// The name.
+        name: String,
+        /// Names that there are.
+        known: Vec<String>,
+    },
+    /// The file could not be read.
+    #[error("{0}")]
+    Unreadable(String),
+}
+
+fn nearest_words(nearest: Option<f64>) -> String {
+    match nearest {
+        Some(nearest) => format!("the nearest is at {nearest} cm-1"),
+        None => "there are no valid channels".to_owned(),
+    }
+}
+
+/// What an expression can ask of a granule, or of anything else that has footprints. All numbers
+/// are f64 with NaN for missing; footprints are numbered in row-major order.
+pub trait Names: Sync {
+    /// Number of footprints.
+    fn footprints(&self) -> usize;
+
+    /// The nearest valid channel.
+    ///
+    /// # Errors
+    /// None near enough; the error names the nearest.
+    fn channel_near(&self, wavenumber: f64) -> Result<Channel, NameError>;
+
+    /// The valid channels of an interval (cm-1, both ends included), of all bands.
+    fn channels_between(&self, low: f64, high: f64) -> Vec<Channel>;
+
+    /// Whether the file stores brightness temperature in the channel's band.
+    fn stores_temperature(&self, channel: &Channel) -> bool;
+
+    /// Radiances, mW m-2 sr-1 (cm-1)-1, of some channels over a range of footprints; those of the
+    /// first channel come first. `out` holds `channels.len() * footprints.len()` numbers.
+    fn radiances(&self, channels: &[Channel], footprints: Range<usize>, out: &mut [f64]);
+
+    /// Brightness temperatures, K, in the same order; asked only of channels that store them.
+    fn temperatures(&self, channels: &[Channel], footprints: Range<usize>, out: &mut [f64]);
+
+    /// Whether all of the channel's numbers have been read; those that have not are NaN.
+    fn is_complete(&self, channel: &Channel) -> bool;
+
+    /// Values by a bare name: geolocation, an index of a footprint dimension.
+    ///
+    /// # Errors
+    /// The name is unknown, or this file does not give it.
+    fn named(&self, name: &str) -> Result<Values, NameError>;
+
+    /// A variable by its name in the file.
+    ///
+    /// # Errors
+    /// There is none of that name, or it can't be read.
+    fn variable(&self, name: &str) -> Result<Values, NameError>;
+
+    /// A definition by name.
+    fn definition(&self, name: &str) -> Option<&Expression>;
+
+    /// Which footprints lie beside which.
+    fn neighbours(&self) -> &Neighbours;
+}
