@@ -3,3 +3,36 @@
 //! Uses: `system`, `units`, `spectral`, `netcdf_files`.
 //!
 //! **Never** judges the data.
+
+mod apodisation;
+mod band;
+mod channels;
+mod cube;
+mod decoder;
+mod error;
+mod find_bands;
+mod footprint_dimensions;
+mod footprint_variables;
+mod footprints;
+mod geolocation;
+mod granule;
+mod identity;
+mod layout;
+mod open;
+mod problem;
+mod slabs;
+mod spectral_axis;
+mod time;
+
+pub use band::{Apodisation, Band, Channel, Quantity};
+pub use channels::{NoChannel, channel_near, channels_between};
+pub use cube::{Cube, Presence};
+pub use decoder::Decoder;
+pub use error::GranuleError;
+pub use footprint_variables::{FlagMeaning, FootprintVariable, VariableRole};
+pub use footprints::FootprintGrid;
+pub use geolocation::{Geolocation, GeolocationSource};
+pub use granule::{Granule, Progress};
+pub use identity::Identity;
+pub use problem::{Problem, ProblemKind};
+pub use time::{TimeScale, TimeUnit};

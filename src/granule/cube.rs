@@ -1,0 +1,243 @@
+//! The values of all bands in memory, in slabs that arrive one after another.
+
+use std::ops::Range;
+use std::sync::OnceLock;
+use std::sync::atomic::{AtomicUsize, Ordering};
+
+use super::band::{Band, Quantity};
+use super::decoder::Decoder;
+use super::footprints::FootprintGrid;
+use super::problem::Problem;
+use crate::netcdf_files::{Samples, with_values};
+use crate::units::TemperatureUnit;
+
+/// Whether values have been read yet.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Presence {
+    /// They are here.
+    Here,
+    /// They are still to be read.
+    NotYet,
+}
+
+/// The values of all bands, as far as they have been read, in the file's own types.
+///
+/// Slabs lie along the first footprint dimension. Each is set once; readers never wait for it.
+#[derive(Debug)]
+pub struct Cube {
+    footprints: usize,
+    row_length: usize,
+    bands: Vec<BandCube>,
+}
+
+#[derive(Debug)]
+struct BandCube {
+    name: String,
+    channels: usize,
+    rows: usize,
+    rows_per_slab: usize,
+    decoder: Decoder,
+    scale: Scale,
+    slabs: Vec<OnceLock<Samples>>,
+    undeclared_fills: AtomicUsize,
+}
+
+/// From the file's unit to the working unit.
+#[derive(Debug)]
+enum Scale {
+    /// Radiance: a factor for each channel.
+    Factors(Vec<f64>),
+    /// Brightness temperature.
+    Temperature(TemperatureUnit),
+}
+
+impl Scale {
+    #[inline]
+    fn apply(&self, channel: usize, value: f64) -> f64 {
+        match self {
+            Self::Factors(factors) => value * factors[channel],
+            Self::Temperature(unit) => above_zero(unit.to_kelvin(value)),
+        }
+    }
+}
+
+/// There is no temperature of zero kelvin or less; such a value is missing.
+#[inline]
+fn above_zero(kelvin: f64) -> f64 {
+    if kelvin > 0.0 { kelvin } else { f64::NAN }
+}
+
+impl Cube {
+    /// An empty cube for the given bands, each with its decoder and the rows that its slabs hold.
+    pub(super) fn new(
+        footprints: &FootprintGrid,
+        bands: &[Band],
+        storage: Vec<(Decoder, usize)>,
+    ) -> Self {
+        let rows = footprints.lengths().first().copied().unwrap_or(0);
+        let band_cube = |(band, (decoder, rows_per_slab)): (&Band, (Decoder, usize))| BandCube {
+            name: band.name.clone(),
+            channels: band.channels(),
+            rows,
+            rows_per_slab,
+            decoder,
+            scale: match &band.quantity {
+                Quantity::Radiance(unit) => Scale::Factors(
+                    band.axis.wavenumbers().iter().map(|&nu| unit.factor_at(nu)).collect(),
+                ),
+                Quantity::BrightnessTemperature(unit) => Scale::Temperature(*unit),
+            },
+            slabs: (0..rows.div_ceil(rows_per_slab)).map(|_| OnceLock::new()).collect(),
+            undeclared_fills: AtomicUsize::new(0),
+        };
+        Self {
+            footprints: footprints.count(),
+            row_length: footprints.row_length(),
+            bands: bands.iter().zip(storage).map(band_cube).collect(),
+        }
+    }
+
+    /// How many footprints the cube spans.
+    pub fn footprints(&self) -> usize {
+        self.footprints
+    }
+
+    /// How many slabs a band has.
+    pub fn slabs(&self, band: usize) -> usize {
+        self.bands[band].slabs.len()
+    }
+
+    /// The slab of a band that holds a footprint.
+    pub fn slab_of(&self, band: usize, footprint: usize) -> usize {
+        footprint / (self.bands[band].rows_per_slab * self.row_length).max(1)
+    }
+
+    /// The footprints of a slab.
+    pub fn footprints_of(&self, band: usize, slab: usize) -> Range<usize> {
+        let rows = self.rows_of(band, slab);
+        rows.start * self.row_length..rows.end * self.row_length
+    }
+
+    /// Places along the first footprint dimension that a slab spans.
+    pub(super) fn rows_of(&self, band: usize, slab: usize) -> Range<usize> {
+        let band = &self.bands[band];
+        let start = slab * band.rows_per_slab;
+        start..(start + band.rows_per_slab).min(band.rows)
+    }
+
+    /// Whether a slab has been read.
+    pub fn has_slab(&self, band: usize, slab: usize) -> bool {
+        self.bands[band].slabs[slab].get().is_some()
+    }
+
+    /// Whether all of a band has been read.
+    pub fn is_complete(&self, band: usize) -> bool {
+        self.bands[band].slabs.iter().all(|slab| slab.get().is_some())
+    }
+
+    /// Whether everything has been read.
+    pub fn is_all_complete(&self) -> bool {
+        (0..self.bands.len()).all(|band| self.is_complete(band))
+    }
+
+    /// Puts a slab in its place: footprint by footprint, the channels of each side by side.
+    pub(super) fn set_slab(&self, band: usize, slab: usize, samples: Samples) {
+        let band = &self.bands[band];
+        let undeclared = band.decoder.undeclared_fills(&samples);
+        // Two that read the same slab read the same values; the first one counts.
+        if band.slabs[slab].set(samples).is_ok() {
+            band.undeclared_fills.fetch_add(undeclared, Ordering::Relaxed);
+        }
+    }
+
+    /// One footprint's values over all channels, into `out`: mW m-2 sr-1 (cm-1)-1 or K, by the
+    /// band's quantity. Missing values are NaN, and so is everything that is not here yet.
+    pub fn values(&self, band: usize, footprint: usize, out: &mut Vec<f64>) -> Presence {
+        let slab = self.slab_of(band, footprint);
+        let first = self.footprints_of(band, slab).start;
+        let band = &self.bands[band];
+        out.clear();
+        let Some(samples) = band.slabs.get(slab).and_then(OnceLock::get) else {
+            out.resize(band.channels, f64::NAN);
+            return Presence::NotYet;
+        };
+        let begin = (footprint - first) * band.channels;
+        band.decode_spectrum(samples, begin, out);
+        Presence::Here
+    }
+
+    /// One channel's values over all footprints, into `out` (of [`Self::footprints`] values):
+    /// mW m-2 sr-1 (cm-1)-1 or K. Missing values and what is not here yet are NaN.
+    pub fn channel(&self, band: usize, channel: usize, out: &mut [f64]) -> Presence {
+        let mut presence = Presence::Here;
+        for slab in 0..self.slabs(band) {
+            let out = &mut out[self.footprints_of(band, slab)];
+            match self.bands[band].slabs[slab].get() {
+                Some(samples) => self.bands[band].decode_channel(samples, channel, out),
+                None => {
+                    out.fill(f64::NAN);
+                    presence = Presence::NotYet;
+                }
+            }
+        }
+        presence
+    }
+
+    /// Decodes values that were read past the cube: one footprint's channels.
+    pub(super) fn decode_spectrum(&self, band: usize, samples: &Samples) -> Vec<f64> {
+        let mut out = Vec::new();
+        self.bands[band].decode_spectrum(samples, 0, &mut out);
+        out
+    }
+
+    /// Bytes that the whole cube takes once it is read.
+    pub fn bytes(&self, band: usize, value_size: usize) -> usize {
+        self.footprints * self.bands[band].channels * value_size
+    }
+
+    /// What was noticed in the values read so far.
+    pub fn notes(&self) -> Vec<Problem> {
+        let notes = self.bands.iter().filter_map(|band| {
+            let count = band.undeclared_fills.load(Ordering::Relaxed);
+            (count > 0).then(|| {
+                Problem::note(
+                    &format!(
+                        "{count} values of -900 or less, which the file does not declare as missing"
+                    ),
+                    &band.name,
+                    "taken as missing; give them as _FillValue or missing_value",
+                )
+            })
+        });
+        notes.collect()
+    }
+}
+
+impl BandCube {
+    fn decode_spectrum(&self, samples: &Samples, begin: usize, out: &mut Vec<f64>) {
+        out.reserve(self.channels);
+        with_values!(
+            samples,
+            values => {
+                let spectrum = &values[begin..begin + self.channels];
+                out.extend(spectrum.iter().enumerate().map(|(channel, &value)| {
+                    self.scale.apply(channel, self.decoder.decode(value as f64))
+                }));
+            },
+            _strings => out.resize(self.channels, f64::NAN)
+        );
+    }
+
+    fn decode_channel(&self, samples: &Samples, channel: usize, out: &mut [f64]) {
+        with_values!(
+            samples,
+            values => {
+                let column = values[channel..].iter().step_by(self.channels);
+                for (out, &value) in out.iter_mut().zip(column) {
+                    *out = self.scale.apply(channel, self.decoder.decode(value as f64));
+                }
+            },
+            _strings => out.fill(f64::NAN)
+        );
+    }
+}

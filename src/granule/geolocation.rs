@@ -1,0 +1,342 @@
+//! Where the footprints lie, when they were seen, and how they are seen and lit.
+
+use super::decoder::Decoder;
+use super::footprint_dimensions::FootprintDimensions;
+use super::footprints::FootprintGrid;
+use super::problem::Problem;
+use super::time::{TimeScale, TimeUnit};
+use crate::netcdf_files::{FileReader, Variable};
+use crate::units::AngleUnit;
+
+/// One value for each footprint, as far as the file has it. Missing values are NaN.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct Geolocation {
+    /// Degrees north.
+    pub latitude: Option<Vec<f64>>,
+    /// Degrees east.
+    pub longitude: Option<Vec<f64>>,
+    /// Zenith angle of the sensor seen from the footprint, degrees.
+    pub view_zenith: Option<Vec<f64>>,
+    /// Azimuth of the sensor seen from the footprint, degrees.
+    pub view_azimuth: Option<Vec<f64>>,
+    /// Zenith angle of the sun, degrees.
+    pub solar_zenith: Option<Vec<f64>>,
+    /// Azimuth of the sun, degrees.
+    pub solar_azimuth: Option<Vec<f64>>,
+    /// Share of land, 0 to 1.
+    pub land_fraction: Option<Vec<f64>>,
+    /// Seconds since 1970-01-01T00:00:00Z, leap seconds not counted.
+    pub time: Option<Vec<f64>>,
+    /// Where each field was found, in the order of the fields above.
+    pub sources: Vec<GeolocationSource>,
+}
+
+/// Where a field of the geolocation was found.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct GeolocationSource {
+    /// The field's name in layer expressions.
+    pub field: &'static str,
+    /// The variable's path in the file.
+    pub variable: String,
+    /// Its unit as in the file.
+    pub units: String,
+    pub(super) place: usize,
+}
+
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Kind {
+    Latitude,
+    Longitude,
+    Angle,
+    Share,
+    Time,
+}
+
+/// What is known about a field: how files call it, and what its absence costs.
+struct Field {
+    name: &'static str,
+    kind: Kind,
+    standard_names: &'static [&'static str],
+    /// Names that producers use, compared in lower case without underscores.
+    usual_names: &'static [&'static str],
+    cost: &'static str,
+}
+
+const FIELDS: [Field; 8] = [
+    Field {
+        name: "lat",
+        kind: Kind::Latitude,
+        standard_names: &["latitude"],
+        usual_names: &["lat", "latitude"],
+        cost: "the map is drawn by array place, and neighbours are those in the array",
+    },
+    Field {
+        name: "lon",
+        kind: Kind::Longitude,
+        standard_names: &["longitude"],
+        usual_names: &["lon", "longitude", "long"],
+        cost: "the map is drawn by array place, and neighbours are those in the array",
+    },
+    Field {
+        name: "view_zenith",
+        kind: Kind::Angle,
+        standard_names: &["sensor_zenith_angle", "platform_zenith_angle"],
+        usual_names: &[
+            "satzen",
+            "viewzenith",
+            "satellitezenith",
+            "sensorzenith",
+            "satellitezenithangle",
+        ],
+        cost: "tests that allow for the slant of the view cannot run",
+    },
+    Field {
+        name: "view_azimuth",
+        kind: Kind::Angle,
+        standard_names: &["sensor_azimuth_angle", "platform_azimuth_angle"],
+        usual_names: &[
+            "satazi",
+            "viewazimuth",
+            "satelliteazimuth",
+            "sensorazimuth",
+            "satelliteazimuthangle",
+        ],
+        cost: "sun glint cannot be told",
+    },
+    Field {
+        name: "solar_zenith",
+        kind: Kind::Angle,
+        standard_names: &["solar_zenith_angle"],
+        usual_names: &["solzen", "solarzenith", "sunzenith", "solarzenithangle"],
+        cost: "day and night cannot be told apart",
+    },
+    Field {
+        name: "solar_azimuth",
+        kind: Kind::Angle,
+        standard_names: &["solar_azimuth_angle"],
+        usual_names: &["solazi", "solarazimuth", "sunazimuth", "solarazimuthangle"],
+        cost: "sun glint cannot be told",
+    },
+    Field {
+        name: "land",
+        kind: Kind::Share,
+        standard_names: &["land_area_fraction", "land_binary_mask"],
+        usual_names: &["landfrac", "landfraction", "landmask", "land"],
+        cost: "land and sea cannot be told apart",
+    },
+    Field {
+        name: "time",
+        kind: Kind::Time,
+        standard_names: &["time"],
+        usual_names: &["time", "obstime", "observationtime"],
+        cost: "the time of a footprint is not shown",
+    },
+];
+
+/// Finds and reads all fields that the file has; the others become problems.
+pub fn read(
+    reader: &FileReader,
+    dimensions: &FootprintDimensions,
+    grid: &FootprintGrid,
+    problems: &mut Vec<Problem>,
+) -> Geolocation {
+    let mut found = Geolocation::default();
+    for field in &FIELDS {
+        let values = match find(reader, dimensions, grid, field) {
+            Some((place, how)) => read_field(
+                reader,
+                dimensions,
+                grid,
+                field,
+                place,
+                how,
+                &mut found.sources,
+                problems,
+            ),
+            None => {
+                problems.push(Problem::missing(&format!("no `{}`", field.name), "", field.cost));
+                None
+            }
+        };
+        match field.name {
+            "lat" => found.latitude = values,
+            "lon" => found.longitude = values,
+            "view_zenith" => found.view_zenith = values,
+            "view_azimuth" => found.view_azimuth = values,
+            "solar_zenith" => found.solar_zenith = values,
+            "solar_azimuth" => found.solar_azimuth = values,
+            "land" => found.land_fraction = values,
+            _ => found.time = values,
+        }
+    }
+    found
+}
+
+/// What speaks for a variable being a field; the earlier the surer.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+enum Evidence {
+    StandardName,
+    Units,
+    Name,
+}
+
+fn find(
+    reader: &FileReader,
+    dimensions: &FootprintDimensions,
+    grid: &FootprintGrid,
+    field: &Field,
+) -> Option<(usize, Evidence)> {
+    let index = reader.index();
+    let candidates = index.variables.iter().enumerate().filter_map(|(place, variable)| {
+        let spread = dimensions.spread(index, variable).filter(|_| variable.kind.is_number())?;
+        let evidence = evidence(field, variable)?;
+        // Full fields before those that are repeated, own dimensions before look-alikes.
+        Some(((evidence, !spread.is_full(grid), spread.guessed, place), (place, evidence)))
+    });
+    candidates.min_by_key(|(order, _)| *order).map(|(_, found)| found)
+}
+
+fn evidence(field: &Field, variable: &Variable) -> Option<Evidence> {
+    let standard_name = variable.text("standard_name").unwrap_or_default();
+    if field.standard_names.contains(&standard_name.as_str()) {
+        return Some(Evidence::StandardName);
+    }
+    if !standard_name.is_empty() {
+        return None;
+    }
+    let units = variable.text("units").unwrap_or_default().to_lowercase().replace('_', "");
+    let units_say = match field.kind {
+        Kind::Latitude => {
+            ["degreesnorth", "degreenorth", "degreesn", "degreen"].contains(&units.as_str())
+        }
+        Kind::Longitude => {
+            ["degreeseast", "degreeeast", "degreese", "degreee"].contains(&units.as_str())
+        }
+        Kind::Time => units.contains(" since "),
+        Kind::Angle | Kind::Share => false,
+    };
+    let plain: String = variable.name.to_lowercase().replace('_', "");
+    if field.usual_names.contains(&plain.as_str()) {
+        return Some(if units_say { Evidence::Units } else { Evidence::Name });
+    }
+    units_say.then_some(Evidence::Units)
+}
+
+#[allow(clippy::too_many_arguments)] // One call, and each argument is what its name says.
+fn read_field(
+    reader: &FileReader,
+    dimensions: &FootprintDimensions,
+    grid: &FootprintGrid,
+    field: &Field,
+    place: usize,
+    evidence: Evidence,
+    sources: &mut Vec<GeolocationSource>,
+    problems: &mut Vec<Problem>,
+) -> Option<Vec<f64>> {
+    let index = reader.index();
+    let variable = &index.variables[place];
+    let spread = dimensions.spread(index, variable)?;
+    let path = &variable.path;
+    if evidence == Evidence::Name {
+        let what = format!("`{}` is taken for {} by its name", path, field.name);
+        problems.push(Problem::guess(&what, path, "a standard_name would say it"));
+    }
+    if spread.guessed {
+        let what = format!(
+            "`{path}` is laid over the footprints by the names and lengths of its dimensions"
+        );
+        problems.push(Problem::guess(&what, path, ""));
+    }
+    let units = variable.text("units").unwrap_or_default();
+    let convert = match conversion(field.kind, variable, &units, problems) {
+        Ok(convert) => convert,
+        Err(reason) => {
+            problems.push(Problem::missing(
+                &format!("`{path}` cannot be used: {reason}"),
+                path,
+                field.cost,
+            ));
+            return None;
+        }
+    };
+    let samples = match reader.read_all(variable) {
+        Ok(samples) => samples,
+        Err(error) => {
+            let what = format!("`{}` cannot be read: {}", path, error.fault);
+            problems.push(Problem::missing(&what, path, field.cost));
+            return None;
+        }
+    };
+    let mut values = spread.over(grid, Decoder::of(variable).decode_all(&samples));
+    values.iter_mut().for_each(|value| *value = convert(*value));
+    note_impossible(field.kind, &mut values, path, problems);
+    sources.push(GeolocationSource {
+        field: field.name,
+        variable: path.clone(),
+        units: crate::system::clean_text(&units),
+        place,
+    });
+    Some(values)
+}
+
+type Conversion = Box<dyn Fn(f64) -> f64>;
+
+/// From the variable's unit to ours.
+fn conversion(
+    kind: Kind,
+    variable: &Variable,
+    units: &str,
+    problems: &mut Vec<Problem>,
+) -> Result<Conversion, String> {
+    match kind {
+        Kind::Latitude | Kind::Longitude | Kind::Angle if units.is_empty() => {
+            problems.push(Problem::guess("no unit; taken as degrees", &variable.path, ""));
+            Ok(Box::new(|value| value))
+        }
+        Kind::Latitude | Kind::Longitude | Kind::Angle => {
+            let unit = AngleUnit::parse(units).map_err(|error| error.to_string())?;
+            Ok(Box::new(move |value| unit.to_degrees(value)))
+        }
+        Kind::Share if units == "%" || units.eq_ignore_ascii_case("percent") => {
+            Ok(Box::new(|value| value / 100.0))
+        }
+        Kind::Share => Ok(Box::new(|value| value)),
+        Kind::Time => {
+            let words: String = ["long_name", "comment", "description"]
+                .iter()
+                .filter_map(|name| variable.text(name))
+                .collect();
+            let says_tai = words.contains("TAI");
+            let calendar = variable.text("calendar");
+            let unit = TimeUnit::parse(units, calendar.as_deref(), says_tai)?;
+            if unit.scale() == TimeScale::ElapsedSinceUtc && says_tai {
+                problems.push(Problem::guess(
+                    "the time counts TAI; its epoch is taken as UTC, and leap seconds since then are taken off",
+                    &variable.path,
+                    "a calendar attribute (tai or utc) would say it",
+                ));
+            }
+            Ok(Box::new(move |value| unit.to_unix(value)))
+        }
+    }
+}
+
+/// Values that no place or angle can have are missing.
+fn note_impossible(kind: Kind, values: &mut [f64], path: &str, problems: &mut Vec<Problem>) {
+    let range = match kind {
+        Kind::Latitude => -90.0..=90.0,
+        Kind::Longitude => -360.0..=360.0,
+        Kind::Angle => -360.0..=360.0,
+        Kind::Share => 0.0..=1.0,
+        Kind::Time => return,
+    };
+    let mut count = 0;
+    for value in values.iter_mut().filter(|value| value.is_finite() && !range.contains(*value)) {
+        *value = f64::NAN;
+        count += 1;
+    }
+    if count > 0 {
+        let what = format!("{count} values outside of {} to {}", range.start(), range.end());
+        problems.push(Problem::note(&what, path, "taken as missing"));
+    }
+}

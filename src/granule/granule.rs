@@ -1,0 +1,305 @@
+//! A granule: an open file whose parts are understood.
+
+use std::path::{Path, PathBuf};
+use std::sync::{Arc, OnceLock};
+
+use super::band::{Band, Channel, Quantity};
+use super::channels::{NoChannel, channel_near, channels_between};
+use super::cube::{Cube, Presence};
+use super::decoder::Decoder;
+use super::error::GranuleError;
+use super::footprint_dimensions::FootprintDimensions;
+use super::footprint_variables::FootprintVariable;
+use super::footprints::FootprintGrid;
+use super::geolocation::Geolocation;
+use super::identity::Identity;
+use super::layout::Layout;
+use super::problem::Problem;
+use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable};
+use crate::spectral::{brightness_temperature_or_nan, planck};
+use crate::system::{Cancel, clean_text};
+
+/// A file of spectra over footprints. Many threads may use it at once.
+#[derive(Debug)]
+pub struct Granule {
+    pub(super) reader: FileReader,
+    pub(super) footprints: FootprintGrid,
+    pub(super) dimensions: FootprintDimensions,
+    pub(super) bands: Vec<Band>,
+    pub(super) sources: Vec<BandSource>,
+    pub(super) geolocation: Geolocation,
+    pub(super) variables: Vec<FootprintVariable>,
+    pub(super) problems: Vec<Problem>,
+    pub(super) cube: Arc<Cube>,
+    pub(super) identity: OnceLock<Identity>,
+}
+
+/// Where a band's values come from.
+#[derive(Debug)]
+pub(super) struct BandSource {
+    pub variable: usize,
+    pub layout: Layout,
+}
+
+/// How far reading has come.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Progress {
+    /// Slabs that are here.
+    pub done: usize,
+    /// All slabs.
+    pub total: usize,
+}
+
+impl Granule {
+    /// Opens a file and understands it. No spectra are read.
+    ///
+    /// # Errors
+    /// The file cannot be read, or holds no spectra that can be used; the message says what was
+    /// looked for and what was found.
+    pub fn open(
+        program: &ReaderProgram,
+        path: &Path,
+        limits: &ReadLimits,
+    ) -> Result<Self, GranuleError> {
+        super::open::open(FileReader::open(program, path, limits)?)
+    }
+
+    /// The file as it was named.
+    pub fn path(&self) -> &Path {
+        self.reader.path()
+    }
+
+    /// The file's name, safe to show.
+    pub fn name(&self) -> String {
+        let name = self.path().file_name().map(|name| name.to_string_lossy().into_owned());
+        clean_text(&name.unwrap_or_default())
+    }
+
+    /// The file's name without its extension, safe to show.
+    pub fn stem(&self) -> String {
+        let stem = self.path().file_stem().map(|stem| stem.to_string_lossy().into_owned());
+        clean_text(&stem.unwrap_or_default())
+    }
+
+    /// The footprints' dimensions.
+    pub fn footprints(&self) -> &FootprintGrid {
+        &self.footprints
+    }
+
+    /// The bands, in the file's order.
+    pub fn bands(&self) -> &[Band] {
+        &self.bands
+    }
+
+    /// Place, time and angles of the footprints.
+    pub fn geolocation(&self) -> &Geolocation {
+        &self.geolocation
+    }
+
+    /// The variables of the footprints, geolocation and quality among them.
+    pub fn variables(&self) -> &[FootprintVariable] {
+        &self.variables
+    }
+
+    /// What is missing, guessed or odd, as far as opening shows it; [`Cube::notes`] tells the rest.
+    pub fn problems(&self) -> &[Problem] {
+        &self.problems
+    }
+
+    /// Everything in the file but its values, for those who list it.
+    pub fn index(&self) -> &FileIndex {
+        self.reader.index()
+    }
+
+    /// A text attribute of the whole file, as it is there.
+    pub fn global_text(&self, name: &str) -> Option<String> {
+        self.index().global_attribute(name)?.text()
+    }
+
+    /// The file's title, safe to show.
+    pub fn title(&self) -> Option<String> {
+        self.global_text("title").map(|text| clean_text(&text))
+    }
+
+    /// What the file says it was made from, safe to show.
+    pub fn source(&self) -> Option<String> {
+        self.global_text("source").map(|text| clean_text(&text))
+    }
+
+    /// The file's size in bytes when it was opened.
+    pub fn file_size(&self) -> u64 {
+        self.reader.stamp().size()
+    }
+
+    /// The variable of a band.
+    pub fn band_variable(&self, band: usize) -> &Variable {
+        &self.index().variables[self.sources[band].variable]
+    }
+
+    /// An error if the file is not the one that was opened.
+    pub fn check_unchanged(&self) -> Result<(), GranuleError> {
+        Ok(self.reader.check_unchanged()?)
+    }
+
+    /// Size and content hash. The first call reads the whole file, later ones cost nothing.
+    pub fn hash(&self) -> Result<&Identity, GranuleError> {
+        if let Some(identity) = self.identity.get() {
+            return Ok(identity);
+        }
+        self.check_unchanged()?;
+        let identity = Identity::of(self.path())
+            .map_err(|error| GranuleError::Read(ReadError::of_system(self.path(), &error)))?;
+        self.check_unchanged()?;
+        Ok(self.identity.get_or_init(|| identity))
+    }
+
+    /// The same, once [`Self::hash`] has been asked for.
+    pub fn identity(&self) -> Option<&Identity> {
+        self.identity.get()
+    }
+
+    /// The values read so far. It fills up behind while it is used.
+    pub fn cube(&self) -> Arc<Cube> {
+        Arc::clone(&self.cube)
+    }
+
+    /// Reads all slabs that are not here yet, band by band; tells how far it is after each.
+    ///
+    /// # Errors
+    /// A slab could not be read, or `cancel` was asked for. What is here stays.
+    pub fn fill(
+        &self,
+        cancel: &Cancel,
+        progress: &mut dyn FnMut(Progress),
+    ) -> Result<(), GranuleError> {
+        self.fill_bands(0..self.bands.len(), cancel, progress)
+    }
+
+    /// The same for some bands only.
+    pub fn fill_bands(
+        &self,
+        bands: impl IntoIterator<Item = usize>,
+        cancel: &Cancel,
+        progress: &mut dyn FnMut(Progress),
+    ) -> Result<(), GranuleError> {
+        let slabs = |band| (0..self.cube.slabs(band)).map(move |slab| (band, slab));
+        let slabs: Vec<(usize, usize)> = bands.into_iter().flat_map(slabs).collect();
+        for (done, &(band, slab)) in slabs.iter().enumerate() {
+            if cancel.is_cancelled() {
+                return Err(GranuleError::Cancelled);
+            }
+            self.fill_slab(band, slab)?;
+            progress(Progress { done: done + 1, total: slabs.len() });
+        }
+        Ok(())
+    }
+
+    /// Reads one slab of a band, if it is not here yet.
+    pub fn fill_slab(&self, band: usize, slab: usize) -> Result<(), GranuleError> {
+        if self.cube.has_slab(band, slab) {
+            return Ok(());
+        }
+        let layout = &self.sources[band].layout;
+        let (start, count) = layout.rows(self.cube.rows_of(band, slab));
+        let samples = self.reader.read(self.band_variable(band), &start, &count)?;
+        self.cube.set_slab(band, slab, layout.footprint_major(&count, samples));
+        Ok(())
+    }
+
+    /// One footprint's values over all channels, in mW m-2 sr-1 (cm-1)-1 or K by the band's quantity,
+    /// missing as NaN: out of the cube, or straight from the file before all background reading.
+    pub fn read_spectrum(&self, band: usize, footprint: usize) -> Result<Vec<f64>, GranuleError> {
+        let mut values = Vec::new();
+        if self.cube.values(band, footprint, &mut values) == Presence::Here {
+            return Ok(values);
+        }
+        let position = self.footprints.position(footprint);
+        let (start, count) = self.sources[band].layout.spectrum(&position);
+        let samples = self.reader.read_urgently(self.band_variable(band), &start, &count)?;
+        Ok(self.cube.decode_spectrum(band, &samples))
+    }
+
+    /// One footprint's radiances, mW m-2 sr-1 (cm-1)-1, missing as NaN. Where the file holds
+    /// brightness temperatures, they are those of black bodies.
+    pub fn radiances(&self, band: usize, footprint: usize) -> Result<Vec<f64>, GranuleError> {
+        let values = self.read_spectrum(band, footprint)?;
+        Ok(match self.bands[band].quantity {
+            Quantity::Radiance(_) => values,
+            Quantity::BrightnessTemperature(_) => self.over_channels(band, values, planck),
+        })
+    }
+
+    /// One footprint's brightness temperatures, K, missing as NaN.
+    pub fn brightness_temperatures(
+        &self,
+        band: usize,
+        footprint: usize,
+    ) -> Result<Vec<f64>, GranuleError> {
+        let values = self.read_spectrum(band, footprint)?;
+        Ok(match self.bands[band].quantity {
+            Quantity::Radiance(_) => {
+                self.over_channels(band, values, brightness_temperature_or_nan)
+            }
+            Quantity::BrightnessTemperature(_) => values,
+        })
+    }
+
+    fn over_channels(
+        &self,
+        band: usize,
+        mut values: Vec<f64>,
+        convert: impl Fn(f64, f64) -> f64,
+    ) -> Vec<f64> {
+        let wavenumbers = self.bands[band].axis.wavenumbers();
+        for (value, &wavenumber) in values.iter_mut().zip(wavenumbers) {
+            *value = convert(wavenumber, *value);
+        }
+        values
+    }
+
+    /// Reads a variable of the footprints: one number for each, missing as NaN. `name` is its path,
+    /// or its last part where that is the only one of its kind.
+    pub fn read_variable(&self, name: &str) -> Result<Vec<f64>, GranuleError> {
+        let found = self.variable(name).ok_or_else(|| GranuleError::NoVariable {
+            path: self.path().to_owned(),
+            name: name.to_owned(),
+            nearest: self.variables.iter().map(|variable| variable.name.clone()).collect(),
+        })?;
+        let variable = &self.index().variables[found.place];
+        let values = Decoder::of(variable).decode_all(&self.reader.read_all(variable)?);
+        let spread = self.dimensions.spread(self.index(), variable);
+        Ok(spread.map_or(Vec::new(), |spread| spread.over(&self.footprints, values)))
+    }
+
+    /// A variable of the footprints by its path, or by its last part where only one has it.
+    pub fn variable(&self, name: &str) -> Option<&FootprintVariable> {
+        let path = name.trim_start_matches('/');
+        if let Some(found) = self.variables.iter().find(|variable| variable.name == path) {
+            return Some(found);
+        }
+        let last = |variable: &&FootprintVariable| variable.name.rsplit('/').next() == Some(path);
+        let mut found = self.variables.iter().filter(last);
+        found.next().filter(|_| found.next().is_none())
+    }
+
+    /// The valid channel nearest to a wavenumber (cm-1), within 0.6 of the spacing there.
+    pub fn channel_near(&self, wavenumber: f64) -> Result<Channel, NoChannel> {
+        channel_near(&self.bands, wavenumber)
+    }
+
+    /// All valid channels from `low` to `high` (cm-1), by rising wavenumber.
+    pub fn channels_between(&self, low: f64, high: f64) -> Vec<Channel> {
+        channels_between(&self.bands, low, high)
+    }
+
+    /// Bytes that the cube takes once all is read.
+    pub fn cube_bytes(&self) -> usize {
+        let size = |band| self.band_variable(band).kind.size().unwrap_or(8);
+        (0..self.bands.len()).map(|band| self.cube.bytes(band, size(band))).sum()
+    }
+
+    /// The place of the file that was opened, absolute.
+    pub fn absolute_path(&self) -> PathBuf {
+        std::path::absolute(self.path()).unwrap_or_else(|_| self.path().to_owned())
+    }
+}

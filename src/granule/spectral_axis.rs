@@ -1,0 +1,140 @@
+//! Which dimension of a variable is spectral, and which variable says where its channels lie.
+
+use super::problem::Problem;
+use crate::netcdf_files::{FileIndex, FileReader, Variable};
+use crate::spectral::ChannelAxis;
+use crate::units::SpectralUnit;
+
+/// A variable that may be the spectral axis of a dimension.
+#[derive(Debug, Clone, PartialEq)]
+pub struct AxisCandidate {
+    /// The dimension, as a place in the file's list.
+    pub dimension: usize,
+    /// The variable, as a place in the file's list.
+    pub variable: usize,
+    /// The unit of its values; none where the file gives none that can be read.
+    pub unit: Option<SpectralUnit>,
+    /// How sure it is: the smaller the better.
+    pub rank: u8,
+}
+
+const STANDARD_NAMES: [&str; 6] = [
+    "sensor_band_central_radiation_wavenumber",
+    "sensor_band_central_radiation_wavelength",
+    "sensor_band_central_radiation_frequency",
+    "radiation_wavelength",
+    "radiation_frequency",
+    "radiation_wavenumber",
+];
+
+/// Parts of names that spectral axes go by.
+const NAME_PARTS: [&str; 8] =
+    ["wavenumber", "wavelength", "wave_number", "wnum", "wvn", "frequency", "channel", "spectral"];
+
+/// Axes of thermal sounders lie well inside of this, cm-1; a length in metres of anything else does not.
+const PLAUSIBLE: std::ops::RangeInclusive<f64> = 100.0..=10_000.0;
+
+/// The spectral axes that a variable's dimensions may have, the best first.
+pub fn candidates(index: &FileIndex, variable: &Variable) -> Vec<AxisCandidate> {
+    let named = variable.text("coordinates").unwrap_or_default();
+    let mut found: Vec<AxisCandidate> = Vec::new();
+    for (place, axis) in index.variables.iter().enumerate() {
+        let &[dimension] = axis.dimensions.as_slice() else { continue };
+        if !axis.kind.is_number() || !variable.dimensions.contains(&dimension) {
+            continue;
+        }
+        let unit = axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok());
+        if let Some(rank) = rank(index, axis, dimension, unit, &named) {
+            found.push(AxisCandidate { dimension, variable: place, unit, rank });
+        }
+    }
+    // The last dimension first where two are as sure; stable, so then by the file's order.
+    let depth = |dimension| variable.dimensions.iter().rposition(|&own| own == dimension);
+    found.sort_by_key(|candidate| (candidate.rank, std::cmp::Reverse(depth(candidate.dimension))));
+    found
+}
+
+/// How sure it is that a one-dimensional variable is a spectral axis; none if nothing speaks for it.
+fn rank(
+    index: &FileIndex,
+    axis: &Variable,
+    dimension: usize,
+    unit: Option<SpectralUnit>,
+    named: &str,
+) -> Option<u8> {
+    let standard_name = axis.text("standard_name").unwrap_or_default();
+    if STANDARD_NAMES.contains(&standard_name.as_str()) {
+        return Some(0);
+    }
+    if !standard_name.is_empty() && unit.is_none() {
+        return None;
+    }
+    let lower = axis.name.to_lowercase();
+    let sounds_spectral = NAME_PARTS.iter().any(|part| lower.contains(part));
+    let is_coordinate = axis.name == index.dimensions[dimension].name;
+    let is_named = named.split_whitespace().any(|name| name == axis.name);
+    match unit {
+        // Wavenumbers, frequencies and micrometres are hardly anything else; metres may be.
+        Some(unit) if unit != SpectralUnit::Metre || sounds_spectral => Some(if is_coordinate {
+            1
+        } else if is_named || sounds_spectral {
+            2
+        } else {
+            3
+        }),
+        Some(_) => None,
+        None => (sounds_spectral && lower.contains("wave")).then_some(4),
+    }
+}
+
+/// Reads an axis: wavenumbers in the file's order. None where its values are no spectral axis.
+///
+/// # Errors
+/// The values could not be read, or are in part no wavenumbers; in words.
+pub fn read(
+    reader: &FileReader,
+    candidate: &AxisCandidate,
+    problems: &mut Vec<Problem>,
+) -> Result<Option<(ChannelAxis, SpectralUnit)>, String> {
+    let variable = &reader.index().variables[candidate.variable];
+    let samples = reader.read_all(variable).map_err(|error| error.fault.to_string())?;
+    let stored = super::decoder::Decoder::of(variable).decode_all(&samples);
+    let unit = match candidate.unit {
+        Some(unit) => unit,
+        None => match guessed_unit(&stored) {
+            Some(unit) => {
+                problems.push(Problem::guess(
+                    &format!(
+                        "the spectral axis has no unit that can be read; taken as {}",
+                        unit.label()
+                    ),
+                    &variable.path,
+                    "give it as `units`, for example cm-1 or um",
+                ));
+                unit
+            }
+            None => return Ok(None),
+        },
+    };
+    let wavenumbers: Vec<f64> = stored.iter().map(|&place| unit.to_wavenumber(place)).collect();
+    let implausible = |nu: &f64| nu.is_finite() && !PLAUSIBLE.contains(nu);
+    if candidate.rank > 0 && wavenumbers.iter().any(implausible) {
+        return Ok(None);
+    }
+    match ChannelAxis::new(wavenumbers) {
+        Ok(axis) => Ok(Some((axis, unit))),
+        Err(error) => Err(format!("its spectral axis `{}`: {error}", variable.path)),
+    }
+}
+
+/// Wavenumbers in cm-1 and wavelengths in um of thermal sounders cannot be mistaken for each other.
+fn guessed_unit(values: &[f64]) -> Option<SpectralUnit> {
+    let all_within = |low: f64, high: f64| values.iter().all(|value| (low..=high).contains(value));
+    if all_within(500.0, 3_500.0) {
+        Some(SpectralUnit::PerCentimetre)
+    } else if all_within(2.5, 20.0) {
+        Some(SpectralUnit::Micrometre)
+    } else {
+        None
+    }
+}
