@@ -3,3 +3,20 @@
 //! Uses: `system`, `units`, `spectral`, `netcdf_files`, `granule`, `flags`.
 //!
 //! **Never** asks why.
+
+mod attributes;
+mod channel_axes;
+mod mask;
+#[cfg(test)]
+mod mask_tests;
+mod provenance;
+mod source;
+mod target;
+mod usable_list;
+
+pub use attributes::CAUTIONS;
+pub use mask::{ExportError, write_mask};
+pub use provenance::{Provenance, Record};
+pub use source::{MaskBand, MaskSource, MaskTime};
+pub use target::{Chosen, NoTarget, Owner, Targets, mask_owner};
+pub use usable_list::{list_owner, write_usable_list};

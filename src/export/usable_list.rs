@@ -1,0 +1,107 @@
+//! The list of usable footprints as CSV.
+
+use std::path::Path;
+
+use super::mask::ExportError;
+use super::provenance::Record;
+use super::source::MaskSource;
+use super::target::Owner;
+use crate::system::write_whole;
+
+/// The column that says which granule a row is of.
+const OWNER: &str = "granule";
+
+/// Writes the footprints that a retrieval may use by the default rule, whole or not at all; gives
+/// their number.
+///
+/// One row per footprint in row-major order: the zero-based index along each footprint dimension
+/// under its name in the granule, `lat`, `lon` where known (an empty cell is missing), the bands in
+/// which an excluding flag limited to bands stands (separated by blanks), and the beginning
+/// of the granule's BLAKE3 hash.
+///
+/// # Errors
+/// The file cannot be written, or the flags are of another granule.
+pub fn write_usable_list(
+    source: &MaskSource,
+    record: &Record<'_>,
+    target: &Path,
+) -> Result<usize, ExportError> {
+    let (flags, granule) = (record.state.review.len(), source.footprint_count());
+    if flags != granule {
+        return Err(ExportError::Mismatch { flags, granule });
+    }
+    let usable: Vec<usize> =
+        (0..granule).filter(|&at| record.state.usable(at, record.vocabulary)).collect();
+    write_whole(target, |temporary| {
+        let mut csv = csv::Writer::from_path(temporary)?;
+        csv.write_record(header(source))?;
+        for &footprint in &usable {
+            csv.write_record(row(source, record, footprint))?;
+        }
+        csv.flush()
+    })?;
+    Ok(usable.len())
+}
+
+fn header(source: &MaskSource) -> Vec<String> {
+    let mut header: Vec<String> = source.footprints.iter().map(|(name, _)| name.clone()).collect();
+    header.extend(source.latitude.iter().map(|_| "lat".to_owned()));
+    header.extend(source.longitude.iter().map(|_| "lon".to_owned()));
+    header.extend(["bands_lost".to_owned(), OWNER.to_owned()]);
+    header
+}
+
+fn row(source: &MaskSource, record: &Record<'_>, footprint: usize) -> Vec<String> {
+    let mut row: Vec<String> =
+        position(source, footprint).iter().map(ToString::to_string).collect();
+    for values in [&source.latitude, &source.longitude].into_iter().flatten() {
+        let value = values.get(footprint).filter(|value| value.is_finite());
+        row.push(value.map(ToString::to_string).unwrap_or_default());
+    }
+    let excluding = record.vocabulary.excluding_mask();
+    let lost = record
+        .state
+        .band_flags
+        .iter()
+        .filter(|(_, flags)| flags.get(footprint).is_some_and(|flags| flags & excluding != 0));
+    let lost: Vec<&str> = lost.map(|(name, _)| name.as_str()).collect();
+    row.extend([lost.join(" "), short(source).to_owned()]);
+    row
+}
+
+/// Indices along the footprint dimensions, the last one running fastest.
+fn position(source: &MaskSource, footprint: usize) -> Vec<usize> {
+    let mut left = footprint;
+    let mut position: Vec<usize> = source
+        .footprints
+        .iter()
+        .rev()
+        .map(|(_, length)| {
+            let index = left % length.max(&1);
+            left /= length.max(&1);
+            index
+        })
+        .collect();
+    position.reverse();
+    position
+}
+
+/// Whose the list at `path` is, where `source` may be its granule.
+pub fn list_owner(path: &Path, source: &MaskSource) -> Owner {
+    let Ok(mut csv) = csv::Reader::from_path(path) else { return Owner::Other };
+    let column = csv.headers().ok().and_then(|names| names.iter().position(|name| name == OWNER));
+    let Some(column) = column else { return Owner::Other };
+    match csv.records().next() {
+        None => Owner::Unknown,
+        Some(Ok(row)) if row.get(column) == Some(short(source)) => {
+            Owner::Granule(source.hash.clone())
+        }
+        Some(Ok(row)) => Owner::Granule(row.get(column).unwrap_or_default().to_owned()),
+        Some(Err(_)) => Owner::Other,
+    }
+}
+
+/// The beginning of the hash: enough to tell granules apart, and short enough for each row.
+fn short(source: &MaskSource) -> &str {
+    source.hash.get(..12).unwrap_or(&source.hash)
+}
