@@ -152,4 +152,10 @@ impl Theme {
     pub fn reversed(&self, style: Style) -> Style {
         style.add_modifier(Modifier::REVERSED)
     }
+
+    /// The look of a curve: the cursor's own, or that of a pinned footprint by its number.
+    pub fn curve(&self, pinned: Option<usize>) -> Style {
+        // The first tint is that of plain text, which the cursor's curve has.
+        pinned.map_or(Style::new(), |number| self.flag_tint(1 + (number % 7) as u8))
+    }
 }

@@ -21,14 +21,19 @@ impl Braille {
         Self { area, ascii, cells: vec![0; usize::from(area.width) * usize::from(area.height)] }
     }
 
+    /// Dots across and down a cell.
+    pub fn dots(&self) -> (usize, usize) {
+        if self.ascii { (1, 1) } else { (2, 4) }
+    }
+
     /// Dots across.
     pub fn columns(&self) -> usize {
-        usize::from(self.area.width) * if self.ascii { 1 } else { 2 }
+        usize::from(self.area.width) * self.dots().0
     }
 
     /// Dots down.
     pub fn rows(&self) -> usize {
-        usize::from(self.area.height) * if self.ascii { 1 } else { 4 }
+        usize::from(self.area.height) * self.dots().1
     }
 
     /// Sets the dots of a column from one row to another, both included; what lies outside is left out.

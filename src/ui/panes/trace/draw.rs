@@ -1,0 +1,271 @@
+//! Drawing the Trace.
+
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+use unicode_width::UnicodeWidthStr;
+
+use super::plot::Plot;
+use super::{TraceView, axes, bands, curves};
+use crate::ui::colour::{Theme, Tone};
+use crate::ui::widgets::{Frame, cut, put, put_right};
+
+/// Draws the Trace: the curves between their axes, names of bands, and the channel in hand with
+/// its value in words at the right of the title.
+pub fn draw(view: &TraceView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer) {
+    let frame = Frame { name: "Trace", rest: &title(view), focused: view.focused };
+    let Some(room) = frame.draw(theme, area, buffer) else { return };
+    draw_words(view, theme, Rect { height: 1, ..area }, buffer);
+    let Some(plot) = Plot::new(view, room) else {
+        let words = if view.empty.is_empty() { "no range to show" } else { view.empty };
+        put(room, words, theme.style(Tone::Faint), theme.ascii, buffer);
+        return;
+    };
+    axes::draw(&plot, view.unit, theme, buffer);
+    let drawn = curves::draw(view, &plot, theme, buffer);
+    bands::draw(&plot, view.bands, theme, buffer);
+    if let Some(channel) = &view.channel {
+        curves::draw_channel(channel, &plot, theme, buffer);
+    }
+    if !drawn || !view.empty.is_empty() {
+        draw_empty(view, &plot, theme, drawn, buffer);
+    }
+}
+
+/// The wavenumber under a place on the screen, for the mouse.
+pub fn wavenumber_at(view: &TraceView<'_>, area: Rect, column: u16, row: u16) -> Option<f64> {
+    let room = Rect { y: area.y + 1, height: area.height.checked_sub(1)?, ..area };
+    if !room.contains((column, row).into()) {
+        return None;
+    }
+    Plot::new(view, room)?.wavenumber_at(column)
+}
+
+fn title(view: &TraceView<'_>) -> String {
+    match (view.title, view.quantity) {
+        (title, "") => title.to_string(),
+        ("", quantity) => quantity.to_string(),
+        (title, quantity) => format!("{title}: {quantity}"),
+    }
+}
+
+/// The channel in hand in words, at the right end of the title's rule.
+fn draw_words(view: &TraceView<'_>, theme: &Theme, rule: Rect, buffer: &mut Buffer) {
+    let Some(channel) = &view.channel else { return };
+    let taken = " Trace ".len() + title(view).width() + 4;
+    let most = usize::from(rule.width).saturating_sub(4);
+    // Where both do not fit, the value is worth more than the title, but the name stays.
+    let room = most.saturating_sub(taken).max(most.saturating_sub(12));
+    if room < 8 || channel.words.is_empty() {
+        return;
+    }
+    let words = format!(" {} ", cut(channel.words, room - 2, theme.ascii));
+    let line = Rect { width: rule.width.saturating_sub(2), ..rule };
+    put_right(line, &words, theme.style(Tone::Accent), theme.ascii, buffer);
+}
+
+/// Says why nothing, or not everything, is there.
+fn draw_empty(view: &TraceView<'_>, plot: &Plot, theme: &Theme, drawn: bool, buffer: &mut Buffer) {
+    let words = match (view.empty, view.curves.is_empty()) {
+        ("", true) => "no spectrum".to_string(),
+        ("", false) => {
+            format!("no channel with a value between {:.1} and {:.1} cm-1", plot.x.0, plot.x.1)
+        }
+        (reason, _) => reason.to_string(),
+    };
+    let width = (words.width() as u16).min(plot.area.width);
+    let place = if drawn {
+        Rect { x: plot.area.right() - width, width, height: 1, ..plot.area }
+    } else {
+        Rect {
+            x: plot.area.x + (plot.area.width - width) / 2,
+            y: plot.area.y + plot.area.height / 2,
+            width,
+            height: 1,
+        }
+    };
+    put(place, &words, theme.style(Tone::Warning), theme.ascii, buffer);
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::ui::panes::trace::{BandName, ChannelMark, Curve, Segment};
+    use crate::ui::widgets::{Screen, THEME};
+    use proptest::prelude::*;
+    use ratatui::style::Color;
+
+    const ASCII: Theme = Theme { ascii: true, ..THEME };
+
+    fn view<'a>(curves: &'a [Curve<'a>]) -> TraceView<'a> {
+        TraceView {
+            title: "12, 3",
+            quantity: "BT",
+            unit: "K",
+            curves,
+            x: (600.0, 1000.0),
+            y: Some((200.0, 300.0)),
+            channel: None,
+            bands: &[],
+            empty: "",
+            focused: false,
+        }
+    }
+
+    fn curve<'a>(letter: Option<char>, pieces: &[(&'a [f64], &'a [f64])]) -> Curve<'a> {
+        let segments =
+            pieces.iter().map(|(wavenumbers, values)| Segment { wavenumbers, values }).collect();
+        Curve { letter, segments }
+    }
+
+    #[test]
+    fn curve_axes_and_gap_in_plain_letters() {
+        let curves = [curve(
+            None,
+            &[(&[600.0, 700.0], &[210.0, 210.0]), (&[800.0, 1000.0], &[290.0, 290.0])],
+        )];
+        let mut screen = Screen::new(46, 9);
+        draw(&view(&curves), &ASCII, screen.area(), &mut screen.buffer);
+        assert_eq!(
+            screen.lines(),
+            [
+                "- Trace 12, 3: BT ----------------------------",
+                "   K     15   14    13    12      11       um",
+                "300+                    *********************",
+                "   |",
+                "   |",
+                "250+",
+                "   |",
+                "200+***********",
+                "    600      700       800       900     cm-1",
+            ]
+        );
+    }
+
+    #[test]
+    fn a_spike_of_one_channel_reaches_the_top_at_any_width() {
+        let wavenumbers: Vec<f64> = (0..800).map(|i| 600.0 + f64::from(i) * 0.5).collect();
+        let mut values = vec![210.0; 800];
+        values[333] = 299.9;
+        let curves = [curve(None, &[(&wavenumbers, &values)])];
+        for width in 20..200 {
+            let mut screen = Screen::new(width, 9);
+            draw(&view(&curves), &ASCII, screen.area(), &mut screen.buffer);
+            let lines = screen.lines();
+            // Its two flanks may fall into neighbouring columns.
+            let reached = lines[2].matches('*').count();
+            assert!((1..=2).contains(&reached), "width {width}: {lines:#?}");
+        }
+    }
+
+    #[test]
+    fn curves_differ_by_colour_and_letter() {
+        let curves = [
+            curve(None, &[(&[600.0, 1000.0], &[290.0, 290.0])]),
+            curve(Some('a'), &[(&[600.0, 1000.0], &[250.0, 250.0])]),
+            curve(Some('b'), &[(&[600.0, 1000.0], &[210.0, 210.0])]),
+        ];
+        let mut screen = Screen::new(60, 12);
+        draw(&view(&curves), &THEME, screen.area(), &mut screen.buffer);
+        let lines = screen.lines();
+        let find = |letter: char| {
+            (2..11).find(|row| lines[*row].contains(letter)).expect("the letter is on the plot")
+        };
+        let (a, b) = (find('a'), find('b'));
+        assert!(a < b, "{lines:#?}");
+        let colour = |row: usize| screen.buffer[(50, row as u16)].fg;
+        assert_ne!(colour(a), colour(b));
+        assert_ne!(colour(a), Color::Reset, "the cursor's curve alone has the text's own colour");
+    }
+
+    #[test]
+    fn the_channel_in_hand_has_a_rule_and_its_value_in_words() {
+        let curves = [curve(None, &[(&[600.0, 1000.0], &[290.0, 290.0])])];
+        let mut view = view(&curves);
+        let words = "900.00 cm-1 · 11.111 µm · 290.00 K";
+        view.channel = Some(ChannelMark { wavenumber: 900.0, words });
+        let mut screen = Screen::new(70, 9);
+        draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        let lines = screen.lines();
+        assert!(lines[0].contains(words), "{lines:#?}");
+        let signs: Vec<char> = lines[5].chars().collect();
+        let rule = signs.iter().rposition(|sign| *sign == '│').unwrap();
+        assert!(rule > 40, "beside that of the axis: {lines:#?}");
+        let area = screen.area();
+        let there = wavenumber_at(&view, area, rule as u16, 5).unwrap();
+        assert!((there - 900.0).abs() < 400.0 / 60.0, "{there}");
+    }
+
+    #[test]
+    fn names_of_bands_never_touch() {
+        let curves = [curve(None, &[(&[600.0, 1000.0], &[290.0, 290.0])])];
+        let mut view = view(&curves);
+        let band = |label, low, high| BandName { label, low, high };
+        let bands = [
+            band("CO2 v2", 580.0, 760.0),
+            band("CO2 hot", 700.0, 745.0),
+            band("window", 800.0, 980.0),
+            band("beyond", 1200.0, 1300.0),
+        ];
+        view.bands = &bands;
+        let mut screen = Screen::new(46, 14);
+        draw(&view, &ASCII, screen.area(), &mut screen.buffer);
+        assert_eq!(screen.lines()[2], "    -----CO2 v2------   ------window-------");
+    }
+
+    #[test]
+    fn an_empty_plot_says_why() {
+        for (empty, curves, words) in [
+            ("reading…", vec![], "reading…"),
+            ("", vec![], "no spectrum"),
+            ("", vec![curve(None, &[(&[700.0], &[f64::NAN])])], "no channel with a value"),
+        ] {
+            let mut view = view(&curves);
+            view.empty = empty;
+            let mut screen = Screen::new(60, 9);
+            draw(&view, &THEME, screen.area(), &mut screen.buffer);
+            assert!(screen.lines().iter().any(|line| line.contains(words)), "{words}");
+        }
+    }
+
+    #[test]
+    fn values_without_a_range_of_their_own_are_fitted() {
+        let curves = [curve(None, &[(&[700.0, 800.0], &[281.0, 281.0])])];
+        let mut view = view(&curves);
+        view.y = None;
+        let mut screen = Screen::new(60, 12);
+        draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        let lines = screen.lines();
+        let row = |text: &str| lines.iter().position(|line| line.contains(text)).unwrap();
+        let curve = row("⠉⠉⠉⠉");
+        assert!(row("282┤") < curve && curve < row("280┤"), "{lines:#?}");
+    }
+
+    proptest! {
+        #![proptest_config(ProptestConfig::with_cases(64))]
+        #[test]
+        fn any_size_and_any_input_is_survived(
+            width in 0u16..250, height in 0u16..80, x in 0u16..40, y in 0u16..20,
+            points in prop::collection::vec((any::<f64>(), any::<f64>()), 0..50),
+            range in (any::<f64>(), any::<f64>()), values in prop::option::of((any::<f64>(), any::<f64>())),
+            near in 0f64..3000.0, ascii: bool,
+        ) {
+            let (wavenumbers, samples): (Vec<f64>, Vec<f64>) = points.into_iter().unzip();
+            let curves = [
+                curve(None, &[(&wavenumbers, &samples)]),
+                curve(Some('a'), &[(&samples, &wavenumbers)]),
+            ];
+            let bands = [BandName { label: "CO2 ν2", low: near - 80.0, high: near + 80.0 }];
+            for range in [range, (near, near + 500.0)] {
+                let mut view = view(&curves);
+                view.x = range;
+                view.y = values;
+                view.bands = &bands;
+                view.channel = Some(ChannelMark { wavenumber: near, words: "words" });
+                let mut screen = Screen::new(width, height);
+                let area = Rect::new(x, y, width, height);
+                draw(&view, &Theme { ascii, ..THEME }, area, &mut screen.buffer);
+                wavenumber_at(&view, area, x + 9, y + 3);
+            }
+        }
+    }
+}
