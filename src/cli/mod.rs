@@ -10,6 +10,7 @@
 mod describe;
 mod exit;
 mod export;
+mod inputs;
 mod manual;
 mod planck;
 mod reader;

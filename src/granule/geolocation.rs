@@ -31,6 +31,24 @@ pub struct Geolocation {
     pub sources: Vec<GeolocationSource>,
 }
 
+impl Geolocation {
+    /// A field by its name in layer expressions, if the file has it.
+    pub fn field(&self, name: &str) -> Option<&[f64]> {
+        let values = match name {
+            "lat" => &self.latitude,
+            "lon" => &self.longitude,
+            "view_zenith" => &self.view_zenith,
+            "view_azimuth" => &self.view_azimuth,
+            "solar_zenith" => &self.solar_zenith,
+            "solar_azimuth" => &self.solar_azimuth,
+            "land" => &self.land_fraction,
+            "time" => &self.time,
+            _ => return None,
+        };
+        values.as_deref()
+    }
+}
+
 /// Where a field of the geolocation was found.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct GeolocationSource {

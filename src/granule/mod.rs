@@ -36,3 +36,6 @@ pub use granule::{Granule, Progress};
 pub use identity::Identity;
 pub use problem::{Problem, ProblemKind};
 pub use time::{TimeScale, TimeUnit};
+
+#[cfg(test)]
+mod tests;

@@ -1,0 +1,234 @@
+//! The description as data: what `--json` prints and the text is made of.
+
+use serde::Serialize;
+
+use crate::granule::{Band, FootprintVariable, Granule, Problem, Quantity};
+use crate::netcdf_files::{FileIndex, Storage, Variable};
+use crate::system::clean_text;
+use crate::units::RadianceUnit;
+
+/// The version of the JSON form. A field may be added without a new one; none is removed or renamed.
+const SCHEMA: u32 = 1;
+
+/// Everything that was understood of a file.
+#[derive(Debug, Serialize)]
+pub struct Description {
+    pub schema: u32,
+    pub file: String,
+    pub format: &'static str,
+    pub file_bytes: u64,
+    pub memory_bytes: usize,
+    pub title: Option<String>,
+    pub source: Option<String>,
+    pub footprints: Footprints,
+    pub bands: Vec<BandDescription>,
+    pub geolocation: Vec<Field>,
+    pub variables: Vec<VariableDescription>,
+    pub problems: Vec<ProblemDescription>,
+}
+
+/// The footprints' dimensions.
+#[derive(Debug, Serialize)]
+pub struct Footprints {
+    pub count: usize,
+    pub dimensions: Vec<Dimension>,
+}
+
+/// One dimension.
+#[derive(Debug, Serialize)]
+pub struct Dimension {
+    pub name: String,
+    pub length: usize,
+}
+
+/// One band.
+#[derive(Debug, Serialize)]
+pub struct BandDescription {
+    pub name: String,
+    pub variable: String,
+    pub dimensions: Vec<String>,
+    pub quantity: &'static str,
+    pub units_in_file: String,
+    pub units_in_use: String,
+    /// What the unit in the file was understood as.
+    pub units_understood: String,
+    pub channels: usize,
+    #[serde(rename = "first_cm-1")]
+    pub first: f64,
+    #[serde(rename = "last_cm-1")]
+    pub last: f64,
+    #[serde(rename = "smallest_spacing_cm-1")]
+    pub smallest_spacing: Option<f64>,
+    #[serde(rename = "largest_spacing_cm-1")]
+    pub largest_spacing: Option<f64>,
+    /// Stretches without a gap.
+    pub segments: usize,
+    pub axis_variable: String,
+    pub axis_units: &'static str,
+    pub apodisation: String,
+    pub storage: StorageDescription,
+}
+
+/// How values are stored.
+#[derive(Debug, Serialize)]
+pub struct StorageDescription {
+    pub kind: &'static str,
+    pub chunks: Option<Vec<usize>>,
+    pub filters: Vec<String>,
+    pub big_endian: bool,
+}
+
+/// One field of the geolocation.
+#[derive(Debug, Serialize)]
+pub struct Field {
+    pub name: &'static str,
+    pub variable: String,
+    pub units_in_file: String,
+    pub lowest: Option<f64>,
+    pub highest: Option<f64>,
+    pub missing: usize,
+}
+
+/// A variable of the footprints.
+#[derive(Debug, Serialize)]
+pub struct VariableDescription {
+    pub name: String,
+    pub role: &'static str,
+    pub long_name: String,
+    pub units: String,
+    pub meanings: Vec<String>,
+}
+
+/// A problem.
+#[derive(Debug, Serialize)]
+pub struct ProblemDescription {
+    pub kind: &'static str,
+    pub what: String,
+    #[serde(rename = "where")]
+    pub where_: String,
+    pub advice: String,
+}
+
+impl Description {
+    /// Describes a granule; reads nothing.
+    pub fn of(granule: &Granule) -> Self {
+        let bands = granule.bands().iter().enumerate();
+        Self {
+            schema: SCHEMA,
+            file: clean_text(&granule.path().to_string_lossy()),
+            format: granule.index().format.label(),
+            file_bytes: granule.file_size(),
+            memory_bytes: granule.cube_bytes(),
+            title: granule.title(),
+            source: granule.source(),
+            footprints: Footprints::of(granule),
+            bands: bands
+                .map(|(place, band)| {
+                    BandDescription::of(band, granule.index(), granule.band_variable(place))
+                })
+                .collect(),
+            geolocation: fields(granule),
+            variables: granule.variables().iter().map(VariableDescription::of).collect(),
+            problems: granule.problems().iter().map(ProblemDescription::of).collect(),
+        }
+    }
+}
+
+impl Footprints {
+    fn of(granule: &Granule) -> Self {
+        let grid = granule.footprints();
+        let dimensions = grid.names().iter().zip(grid.lengths());
+        Self {
+            count: grid.count(),
+            dimensions: dimensions
+                .map(|(name, &length)| Dimension { name: clean_text(name), length })
+                .collect(),
+        }
+    }
+}
+
+impl BandDescription {
+    fn of(band: &Band, index: &FileIndex, variable: &Variable) -> Self {
+        let (first, last) = band.range();
+        let spacing = band.spacing();
+        let understood = match &band.quantity {
+            Quantity::Radiance(unit) => unit.label(),
+            Quantity::BrightnessTemperature(unit) => unit.label().to_owned(),
+        };
+        Self {
+            name: band.name.clone(),
+            variable: clean_text(&band.variable),
+            dimensions: index.dimension_names(variable).into_iter().map(clean_text).collect(),
+            quantity: band.quantity.label(),
+            units_in_file: clean_text(&band.unit_text),
+            units_in_use: band.quantity.working_unit(),
+            units_understood: understood,
+            channels: band.channels(),
+            first,
+            last,
+            smallest_spacing: spacing.map(|(low, _)| low),
+            largest_spacing: spacing.map(|(_, high)| high),
+            segments: band.axis.segments().len(),
+            axis_variable: clean_text(&band.axis_variable),
+            axis_units: band.axis_unit.label(),
+            apodisation: band.apodisation.label().to_owned(),
+            storage: StorageDescription::of(variable, &variable.storage),
+        }
+    }
+
+    /// Whether the unit differs from the one that values are handed on in.
+    pub fn is_converted(&self) -> bool {
+        self.units_understood != RadianceUnit::WORKING.label() && self.units_understood != "K"
+    }
+}
+
+impl StorageDescription {
+    fn of(variable: &Variable, storage: &Storage) -> Self {
+        Self {
+            kind: variable.kind.label(),
+            chunks: storage.chunks.clone(),
+            filters: storage.filters.clone(),
+            big_endian: storage.big_endian,
+        }
+    }
+}
+
+impl VariableDescription {
+    fn of(variable: &FootprintVariable) -> Self {
+        Self {
+            name: clean_text(&variable.name),
+            role: variable.role.label(),
+            long_name: variable.long_name.clone(),
+            units: variable.units.clone(),
+            meanings: variable.meanings.iter().map(|meaning| meaning.meaning.clone()).collect(),
+        }
+    }
+}
+
+impl ProblemDescription {
+    fn of(problem: &Problem) -> Self {
+        Self {
+            kind: problem.kind.label(),
+            what: problem.what.clone(),
+            where_: problem.where_.clone(),
+            advice: problem.advice.clone(),
+        }
+    }
+}
+
+fn fields(granule: &Granule) -> Vec<Field> {
+    let place = granule.geolocation();
+    let field = |source: &crate::granule::GeolocationSource| {
+        let values = place.field(source.field).unwrap_or_default();
+        let finite = || values.iter().copied().filter(|value| value.is_finite());
+        Field {
+            name: source.field,
+            variable: clean_text(&source.variable),
+            units_in_file: source.units.clone(),
+            lowest: finite().reduce(f64::min),
+            highest: finite().reduce(f64::max),
+            missing: values.len() - finite().count(),
+        }
+    };
+    place.sources.iter().map(field).collect()
+}

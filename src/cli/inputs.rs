@@ -1,0 +1,279 @@
+//! Input files as they are named on the command line: files, folders, globs, lists.
+
+use std::collections::HashSet;
+use std::ffi::{OsStr, OsString};
+use std::io::BufRead;
+use std::os::unix::ffi::{OsStrExt, OsStringExt};
+use std::path::{Path, PathBuf};
+use std::time::Duration;
+
+use anyhow::Context;
+
+use super::exit::UsageError;
+use crate::netcdf_files::{ReadLimits, ReaderProgram};
+
+/// Endings of the files that are taken out of a folder.
+const ENDINGS: [&str; 5] = ["nc", "nc4", "cdf", "h5", "hdf5"];
+
+/// Where input files are named.
+#[derive(Debug, Clone, Default, clap::Args)]
+pub struct Inputs {
+    /// Files, folders, globs, or `-` for a list on standard input, one path a line
+    #[arg(value_name = "PATHS")]
+    pub paths: Vec<PathBuf>,
+    /// Read more paths from a file, one a line; `-` is standard input
+    #[arg(long, value_name = "FILE")]
+    pub files_from: Option<PathBuf>,
+}
+
+/// How files are read.
+#[derive(Debug, Clone, Default, clap::Args)]
+pub struct Reading {
+    /// Seconds after which a file that does not answer is given up
+    #[arg(long, hide = true, value_name = "SECONDS", value_parser = seconds)]
+    pub reader_limit: Option<Duration>,
+}
+
+fn seconds(text: &str) -> Result<Duration, String> {
+    let seconds: f64 = text.parse().map_err(|_| "not a number".to_owned())?;
+    let limit = Duration::try_from_secs_f64(seconds).map_err(|error| error.to_string())?;
+    if limit.is_zero() { Err("must be more than zero".into()) } else { Ok(limit) }
+}
+
+impl Reading {
+    /// The limits of the reader processes.
+    pub fn limits(&self) -> ReadLimits {
+        let defaults = ReadLimits::default();
+        ReadLimits { per_request: self.reader_limit.unwrap_or(defaults.per_request), ..defaults }
+    }
+}
+
+/// This program, which is started again as the reader of a file.
+pub fn reader_program() -> anyhow::Result<ReaderProgram> {
+    let program =
+        std::env::current_exe().context("cannot find this program to start its reader")?;
+    Ok(ReaderProgram::new(program))
+}
+
+impl Inputs {
+    /// All files named, each once, in the order of the arguments; what comes out of a folder or a
+    /// glob is in natural order (`g2` before `g10`).
+    ///
+    /// # Errors
+    /// Nothing is named, a list cannot be read, a glob makes no sense or matches nothing, a folder
+    /// holds no such files. A file that does not exist is left for the reader to name.
+    pub fn files(&self) -> anyhow::Result<Vec<PathBuf>> {
+        let mut stdin = std::io::stdin().lock();
+        self.files_with(&mut stdin)
+    }
+
+    fn files_with(&self, stdin: &mut impl BufRead) -> anyhow::Result<Vec<PathBuf>> {
+        let mut files = Vec::new();
+        for path in &self.paths {
+            if path.as_os_str() == "-" {
+                expand_list(stdin, &mut files)?;
+            } else {
+                expand(path, &mut files)?;
+            }
+        }
+        match &self.files_from {
+            Some(list) if list.as_os_str() == "-" => expand_list(stdin, &mut files)?,
+            Some(list) => {
+                let file = std::fs::File::open(list)
+                    .with_context(|| format!("cannot open the list {}", list.display()))?;
+                expand_list(&mut std::io::BufReader::new(file), &mut files)?;
+            }
+            None => {}
+        }
+        if files.is_empty() {
+            return Err(UsageError("no input files: name files, folders or globs".into()).into());
+        }
+        let mut seen = HashSet::new();
+        files.retain(|file| seen.insert(same_file(file)));
+        Ok(files)
+    }
+}
+
+/// Two ways to one file are one file.
+fn same_file(path: &Path) -> PathBuf {
+    path.canonicalize().unwrap_or_else(|_| path.to_owned())
+}
+
+fn expand_list(list: &mut impl BufRead, files: &mut Vec<PathBuf>) -> anyhow::Result<()> {
+    for line in list.split(b'\n') {
+        let mut line = line.context("cannot read the list of files")?;
+        if line.last() == Some(&b'\r') {
+            line.pop();
+        }
+        if !line.iter().all(u8::is_ascii_whitespace) {
+            expand(Path::new(&OsString::from_vec(line)), files)?;
+        }
+    }
+    Ok(())
+}
+
+fn expand(path: &Path, files: &mut Vec<PathBuf>) -> anyhow::Result<()> {
+    if path.is_dir() {
+        let found = files_in(path)?;
+        if found.is_empty() {
+            let endings = ENDINGS.join(", .");
+            return Err(UsageError(format!("{} holds no .{endings} files", path.display())).into());
+        }
+        files.extend(found);
+    } else if path.exists() || !has_wildcard(path) {
+        files.push(path.to_owned());
+    } else {
+        files.extend(matches_of(path)?);
+    }
+    Ok(())
+}
+
+fn has_wildcard(path: &Path) -> bool {
+    path.as_os_str().as_bytes().iter().any(|byte| b"*?[{".contains(byte))
+}
+
+/// The files right in a folder; folders inside of it are not entered, hidden files are left out.
+fn files_in(folder: &Path) -> anyhow::Result<Vec<PathBuf>> {
+    let entries =
+        std::fs::read_dir(folder).with_context(|| format!("cannot list {}", folder.display()))?;
+    let mut found = Vec::new();
+    for entry in entries {
+        let path = entry.with_context(|| format!("cannot list {}", folder.display()))?.path();
+        let ending = path.extension().map(OsStr::to_ascii_lowercase);
+        let wanted = ending.is_some_and(|ending| ENDINGS.iter().any(|known| ending == *known));
+        let hidden = path.file_name().is_some_and(|name| name.as_bytes().starts_with(b"."));
+        if wanted && !hidden && path.is_file() {
+            found.push(path);
+        }
+    }
+    sort_naturally(&mut found);
+    Ok(found)
+}
+
+/// The files that a glob matches; it is walked from its last folder without a wildcard.
+fn matches_of(pattern: &Path) -> anyhow::Result<Vec<PathBuf>> {
+    let text = pattern.to_string_lossy();
+    let glob = globset::GlobBuilder::new(&text)
+        .literal_separator(true)
+        .build()
+        .map_err(|error| UsageError(format!("{text}: {error}")))?;
+    let matcher = glob.compile_matcher();
+    let root: PathBuf =
+        pattern.components().take_while(|part| !has_wildcard(part.as_ref())).collect();
+    let in_here = root.as_os_str().is_empty();
+    let walk_root = if in_here { Path::new(".") } else { root.as_path() };
+    // `**` may go as deep as it likes, other globs only as deep as they are long.
+    let below = pattern.components().count() - root.components().count();
+    let depth = if text.contains("**") { usize::MAX } else { below };
+    let mut found: Vec<PathBuf> = walkdir::WalkDir::new(walk_root)
+        .follow_links(true)
+        .max_depth(depth)
+        .into_iter()
+        .filter_map(Result::ok)
+        .filter(|entry| entry.file_type().is_file())
+        .map(|entry| match in_here {
+            true => entry.path().strip_prefix(".").unwrap_or(entry.path()).to_owned(),
+            false => entry.into_path(),
+        })
+        .filter(|path| matcher.is_match(path))
+        .collect();
+    if found.is_empty() {
+        return Err(UsageError(format!("{text} matches no file")).into());
+    }
+    sort_naturally(&mut found);
+    Ok(found)
+}
+
+/// Numbers inside of names count as numbers.
+fn sort_naturally(paths: &mut [PathBuf]) {
+    paths.sort_by_cached_key(|path| (natural_key(path), path.clone()));
+}
+
+#[derive(Debug, PartialEq, Eq, PartialOrd, Ord)]
+enum Part {
+    /// Digits without leading zeros; a longer number is a larger one.
+    Number(usize, Vec<u8>),
+    Text(Vec<u8>),
+}
+
+fn natural_key(path: &Path) -> Vec<Part> {
+    let bytes = path.as_os_str().as_bytes();
+    let runs = bytes.chunk_by(|one, next| one.is_ascii_digit() == next.is_ascii_digit());
+    runs.map(|run| match run.first().is_some_and(u8::is_ascii_digit) {
+        true => {
+            let zeros = run.iter().take_while(|&&digit| digit == b'0').count();
+            Part::Number(run.len() - zeros, run[zeros..].to_vec())
+        }
+        false => Part::Text(run.to_vec()),
+    })
+    .collect()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn folder(names: &[&str]) -> tempfile::TempDir {
+        let folder = tempfile::tempdir().unwrap();
+        for name in names {
+            let path = folder.path().join(name);
+            std::fs::create_dir_all(path.parent().unwrap()).unwrap();
+            std::fs::write(path, b"").unwrap();
+        }
+        folder
+    }
+
+    fn expanded(paths: &[PathBuf], stdin: &str) -> anyhow::Result<Vec<String>> {
+        let inputs = Inputs { paths: paths.to_vec(), files_from: None };
+        let files = inputs.files_with(&mut stdin.as_bytes())?;
+        let name = |file: &PathBuf| file.file_name().unwrap().to_str().unwrap().to_owned();
+        Ok(files.iter().map(name).collect())
+    }
+
+    #[test]
+    fn a_folder_gives_its_granules_in_natural_order() {
+        let folder = folder(&["g10.nc", "g2.nc", "g02b.NC", "notes.txt", ".hidden.nc", "in/g1.nc"]);
+        let found = expanded(&[folder.path().to_owned()], "").unwrap();
+        assert_eq!(found, ["g2.nc", "g02b.NC", "g10.nc"]);
+    }
+
+    #[test]
+    fn globs_are_expanded_where_the_shell_did_not() {
+        let folder = folder(&["a/g1.nc", "b/g2.nc", "b/g3.h5", "b/deep/g4.nc"]);
+        let found = |pattern: &str| expanded(&[folder.path().join(pattern)], "");
+        assert_eq!(found("*/g?.nc").unwrap(), ["g1.nc", "g2.nc"]);
+        assert_eq!(found("**/*.nc").unwrap(), ["g1.nc", "g4.nc", "g2.nc"]);
+        assert!(found("*.nc").unwrap_err().to_string().contains("matches no file"));
+        assert!(found("[").unwrap_err().downcast_ref::<UsageError>().is_some());
+    }
+
+    #[test]
+    fn a_file_with_a_wildcard_in_its_name_is_itself() {
+        let folder = folder(&["g[1].nc", "g1.nc"]);
+        assert_eq!(expanded(&[folder.path().join("g[1].nc")], "").unwrap(), ["g[1].nc"]);
+    }
+
+    #[test]
+    fn each_file_comes_once_in_the_order_named() {
+        let folder = folder(&["g1.nc", "g2.nc"]);
+        let path = |name: &str| folder.path().join(name);
+        let found =
+            expanded(&[path("g2.nc"), folder.path().to_owned(), path("./g2.nc")], "").unwrap();
+        assert_eq!(found, ["g2.nc", "g1.nc"]);
+    }
+
+    #[test]
+    fn a_list_on_standard_input_may_have_blank_lines() {
+        let found = expanded(&["-".into()], "/no/a.nc\r\n\n  \n/no/b.nc").unwrap();
+        assert_eq!(found, ["a.nc", "b.nc"]);
+    }
+
+    #[test]
+    fn naming_nothing_is_wrong_usage() {
+        let empty = folder(&[]);
+        for paths in [vec![], vec![empty.path().to_owned()]] {
+            let error = expanded(&paths, "").unwrap_err();
+            assert!(error.downcast_ref::<UsageError>().is_some(), "{error}");
+        }
+    }
+}
