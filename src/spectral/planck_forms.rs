@@ -67,10 +67,10 @@ mod tests {
         let falls = |form: fn(f64, f64) -> f64, peak: f64| {
             [0.9999, 1.0001].iter().all(|factor| form(peak * factor, 300.0) < form(peak, 300.0))
         };
-        assert!(falls(planck_wavelength, 2897.771_955_18e-6 / 300.0));
+        assert!(falls(planck_wavelength, 2_897.771_955_18e-6 / 300.0));
         assert!(falls(planck_frequency, 58.789_257_576_5e9 * 300.0));
         // Away from it one of the two goes up.
-        assert!(!falls(planck_wavelength, 2897.771_955_18e-6 / 300.0 * 1.001));
+        assert!(!falls(planck_wavelength, 2_897.771_955_18e-6 / 300.0 * 1.001));
         assert!(!falls(planck_frequency, 58.789_257_576_5e9 * 300.0 * 1.001));
     }
 

@@ -1,0 +1,29 @@
+//! Ratios measured in one run: each fast path against the plain one that it replaces.
+//!
+//! `cargo bench --profile dev` (which is optimised here, and shares what the tests have built)
+//! prints one table per section. Times of one machine say little about another;
+//! ratios of one run do. To add a section, write a module with a function that returns a
+//! [`table::Section`] and name it in `main`.
+#![allow(clippy::print_stdout)]
+
+mod inversion;
+mod stopwatch;
+mod table;
+
+/// How large the measured cases are.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Size {
+    /// A full-size granule.
+    Full,
+    /// A few values: shows that the sections still run.
+    Small,
+}
+
+fn main() {
+    // Cargo says `--bench` when it measures; a test run of all targets does not.
+    let measuring = std::env::args().any(|argument| argument == "--bench");
+    let size = if measuring { Size::Full } else { Size::Small };
+    for section in [inversion::section(size)] {
+        println!("{section}");
+    }
+}
