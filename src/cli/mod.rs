@@ -17,6 +17,7 @@ mod reader;
 mod review;
 mod spectrum;
 mod synth;
+mod table;
 mod tabulate;
 
 use std::process::ExitCode;

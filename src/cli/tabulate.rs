@@ -1,12 +1,210 @@
-//! `radsieve tabulate`.
+//! `radsieve tabulate`: layers per footprint as CSV or JSON lines.
+
+use std::io::{self, BufWriter, Write};
+use std::path::{Path, PathBuf};
 
 use super::Exit;
+use super::exit::UsageError;
+use super::table::{Form, Heading, write_rows};
+use crate::granule::{Granule, ProblemKind};
+use crate::layers::{Expression, GranuleNames, Layer, LayerError, channels_needed, evaluate_all};
+use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::system::{Cancel, WriteError, clean_text, write_whole};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
-pub struct Arguments {}
+#[command(after_help = "Examples:\n  \
+    radsieve tabulate granule.nc --layer 'bt(900)' --layer 'bt(900) - bt(1231)'\n  \
+    radsieve tabulate *.nc --layer 'sd3(bt(900))' --json -o spread.jsonl")]
+pub struct Arguments {
+    /// Granules: files, folders, globs, or - for a list on standard input.
+    #[arg(required = true, value_name = "FILES")]
+    files: Vec<String>,
+    /// A layer expression, one column each, as in 'bt(900) - bt(831)'.
+    #[arg(long = "layer", value_name = "EXPR", required = true, allow_hyphen_values = true)]
+    layers: Vec<String>,
+    /// JSON lines in place of CSV.
+    #[arg(long)]
+    json: bool,
+    /// Write to a file, whole or not at all, in place of standard output.
+    #[arg(short, long, value_name = "FILE")]
+    output: Option<PathBuf>,
+    /// Say nothing about what was noticed in the files.
+    #[arg(short, long)]
+    quiet: bool,
+}
+
+/// What the arguments mean.
+struct Plan {
+    files: Vec<PathBuf>,
+    layers: Vec<Expression>,
+    form: Form,
+    quiet: bool,
+    program: ReaderProgram,
+}
+
+/// How the files fared.
+#[derive(Debug, Default)]
+struct Tally {
+    done: usize,
+    failed: usize,
+    /// Failures because the expression uses a name that means nothing.
+    unknown_names: usize,
+}
+
+/// Why a file gave no rows.
+enum Failure {
+    /// Its layers can't be had from it.
+    File(anyhow::Error),
+    /// The table can't be written any more.
+    Output(io::Error),
+}
 
 /// Runs the command.
-pub fn run(_arguments: Arguments) -> anyhow::Result<Exit> {
-    anyhow::bail!("tabulate is not part of this version yet")
+pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    let plan = plan(&arguments)?;
+    let tally = match &arguments.output {
+        None => {
+            let mut out = BufWriter::new(io::stdout().lock());
+            let tally = tabulate(&plan, &mut out)?;
+            out.flush()?;
+            tally
+        }
+        Some(target) => into_file(&plan, target)?,
+    };
+    Ok(tally.exit())
+}
+
+fn plan(arguments: &Arguments) -> anyhow::Result<Plan> {
+    let read = |text: &String| {
+        Expression::parse(text).map_err(|error| UsageError(format!("--layer: {error}")))
+    };
+    Ok(Plan {
+        layers: arguments.layers.iter().map(read).collect::<Result<_, _>>()?,
+        files: arguments.files.iter().map(PathBuf::from).collect(),
+        form: if arguments.json { Form::JsonLines } else { Form::Csv },
+        quiet: arguments.quiet,
+        program: ReaderProgram::new(std::env::current_exe()?),
+    })
+}
+
+/// Writes the table to a file that appears whole or not at all; not at all where no input gave
+/// anything.
+fn into_file(plan: &Plan, target: &Path) -> anyhow::Result<Tally> {
+    let mut tally = Tally::default();
+    let written = write_whole(target, |path| {
+        let mut out = BufWriter::new(std::fs::File::create(path)?);
+        tally = tabulate(plan, &mut out)?;
+        out.flush()?;
+        if tally.done == 0 { Err(io::Error::other("no file gave anything")) } else { Ok(()) }
+    });
+    match written {
+        // Each file's failure has been told already.
+        Err(WriteError::Content { .. }) if tally.done == 0 && tally.failed > 0 => Ok(tally),
+        written => {
+            written?;
+            Ok(tally)
+        }
+    }
+}
+
+/// Writes the rows of all files, one after another; a file that fails is named and passed over.
+fn tabulate(plan: &Plan, out: &mut dyn Write) -> io::Result<Tally> {
+    let mut tally = Tally::default();
+    let mut heading = None;
+    for file in &plan.files {
+        match one_file(plan, file, &mut heading, out) {
+            Ok(()) => tally.done += 1,
+            Err(Failure::Output(error)) => return Err(error),
+            Err(Failure::File(error)) => {
+                eprintln!("radsieve: {error:#}");
+                tally.failed += 1;
+                let unknown = error.downcast_ref().is_some_and(LayerError::is_unknown_name);
+                tally.unknown_names += usize::from(unknown);
+            }
+        }
+    }
+    Ok(tally)
+}
+
+fn one_file(
+    plan: &Plan,
+    file: &Path,
+    heading: &mut Option<Heading>,
+    out: &mut dyn Write,
+) -> Result<(), Failure> {
+    let granule = Granule::open(&plan.program, file, &ReadLimits::default())
+        .map_err(|error| Failure::File(error.into()))?;
+    if let Some(reason) = heading.as_ref().and_then(|heading| heading.refuses(&granule)) {
+        return Err(Failure::File(anyhow::anyhow!("{}: {reason}", granule.name())));
+    }
+    let layers = layers(plan, &granule).map_err(Failure::File)?;
+    if !plan.quiet {
+        tell(&granule, &layers);
+    }
+    let name = file.to_string_lossy();
+    let heading = match heading {
+        Some(heading) => heading,
+        None => {
+            let new = Heading::of(&granule, plan.files.len() > 1);
+            if plan.form == Form::Csv {
+                let texts: Vec<String> =
+                    plan.layers.iter().map(|layer| layer.text().to_owned()).collect();
+                new.write(&texts, out).map_err(Failure::Output)?;
+            }
+            heading.insert(new)
+        }
+    };
+    let lacking = if plan.form == Form::Csv { heading.lacks(&granule) } else { Vec::new() };
+    if !lacking.is_empty() && !plan.quiet {
+        let columns = lacking.join(" and ");
+        eprintln!(
+            "radsieve: {}: its {columns} are left out, for the first file has none",
+            granule.name()
+        );
+    }
+    write_rows(plan.form, heading, &name, &granule, &layers, out).map_err(Failure::Output)
+}
+
+/// Reads the bands that the layers need, and no others, and evaluates the layers.
+fn layers(plan: &Plan, granule: &Granule) -> anyhow::Result<Vec<Layer>> {
+    let cube = granule.cube();
+    let names = GranuleNames::new(granule, &cube);
+    let expressions: Vec<&Expression> = plan.layers.iter().collect();
+    let mut bands: Vec<usize> =
+        channels_needed(&expressions, &names).iter().map(|channel| channel.band).collect();
+    bands.dedup();
+    granule.fill_bands(bands, &Cancel::new(), &mut |_| {})?;
+    evaluate_all(&expressions, &names)
+        .into_iter()
+        .map(|layer| layer.map_err(|error| anyhow::Error::new(error).context(granule.name())))
+        .collect()
+}
+
+/// Says on standard error what was noticed: guesses about the file, notes on the layers.
+fn tell(granule: &Granule, layers: &[Layer]) {
+    let file = granule.name();
+    let noticed = granule.cube().notes();
+    for problem in granule.problems().iter().chain(&noticed) {
+        // What a file merely lacks matters here only where a layer asks for it.
+        if problem.kind != ProblemKind::Missing {
+            eprintln!("radsieve: {file}: {problem}");
+        }
+    }
+    for layer in layers {
+        for note in &layer.notes {
+            eprintln!("radsieve: {file}: {}: {note}", clean_text(&layer.expression));
+        }
+    }
+}
+
+impl Tally {
+    fn exit(&self) -> Exit {
+        match (self.done, self.failed) {
+            (_, 0) => Exit::Done,
+            (0, failed) if failed == self.unknown_names => Exit::Usage,
+            (0, _) => Exit::Failed,
+            _ => Exit::SomeFailed,
+        }
+    }
 }

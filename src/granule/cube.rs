@@ -169,16 +169,34 @@ impl Cube {
     /// One channel's values over all footprints, into `out` (of [`Self::footprints`] values):
     /// mW m-2 sr-1 (cm-1)-1 or K. Missing values and what is not here yet are NaN.
     pub fn channel(&self, band: usize, channel: usize, out: &mut [f64]) -> Presence {
+        self.channel_over(band, channel, 0..self.footprints, out)
+    }
+
+    /// The same over some footprints only; `out` is as long as their range.
+    pub fn channel_over(
+        &self,
+        band: usize,
+        channel: usize,
+        footprints: Range<usize>,
+        out: &mut [f64],
+    ) -> Presence {
         let mut presence = Presence::Here;
-        for slab in 0..self.slabs(band) {
-            let out = &mut out[self.footprints_of(band, slab)];
+        let (mut at, mut out) = (footprints.start, out);
+        while at < footprints.end && !out.is_empty() {
+            let slab = self.slab_of(band, at);
+            let held = self.footprints_of(band, slab);
+            let count = (held.end.min(footprints.end) - at).min(out.len());
+            let (part, rest) = out.split_at_mut(count);
             match self.bands[band].slabs[slab].get() {
-                Some(samples) => self.bands[band].decode_channel(samples, channel, out),
+                Some(samples) => {
+                    self.bands[band].decode_channel(samples, at - held.start, channel, part);
+                }
                 None => {
-                    out.fill(f64::NAN);
+                    part.fill(f64::NAN);
                     presence = Presence::NotYet;
                 }
             }
+            (at, out) = (at + count, rest);
         }
         presence
     }
@@ -228,11 +246,12 @@ impl BandCube {
         );
     }
 
-    fn decode_channel(&self, samples: &Samples, channel: usize, out: &mut [f64]) {
+    /// One channel from the slab's footprint `first` on.
+    fn decode_channel(&self, samples: &Samples, first: usize, channel: usize, out: &mut [f64]) {
         with_values!(
             samples,
             values => {
-                let column = values[channel..].iter().step_by(self.channels);
+                let column = values[first * self.channels + channel..].iter().step_by(self.channels);
                 for (out, &value) in out.iter_mut().zip(column) {
                     *out = self.scale.apply(channel, self.decoder.decode(value as f64));
                 }

@@ -6,6 +6,7 @@
 
 mod evaluation;
 mod first_look;
+mod granule_names;
 mod names;
 mod neighbours;
 mod syntax;
@@ -14,7 +15,8 @@ mod value_range;
 
 pub use evaluation::{Layer, LayerError, channels_needed, evaluate, evaluate_all};
 pub use first_look::{FIRST_LOOK, suggestions};
-pub use names::{Channel, NameError, Names, Values};
+pub use granule_names::GranuleNames;
+pub use names::{NameError, Names, Values};
 pub use neighbours::Neighbours;
 pub use syntax::{
     Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions, near_names,

@@ -5,17 +5,8 @@ use std::ops::Range;
 use super::neighbours::Neighbours;
 use super::syntax::Expression;
 use super::unit::LayerUnit;
-
-/// One channel of one band.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Channel {
-    /// Number of the band.
-    pub band: usize,
-    /// Index along the band's spectral axis, in the file's order.
-    pub index: usize,
-    /// Its wavenumber, cm-1.
-    pub wavenumber: f64,
-}
+use crate::granule::Channel;
+use crate::system::clean_text;
 
 /// Values by name, one per footprint, with what they are measured in.
 #[derive(Debug, Clone, PartialEq)]
@@ -43,6 +34,14 @@ pub enum NameError {
     /// Nothing is called that.
     #[error("there is no {name}")]
     Unknown {
+        /// The name.
+        name: String,
+        /// Names that there are.
+        known: Vec<String>,
+    },
+    /// The file has no variable of the footprints that is called that.
+    #[error("the file has no variable of the footprints called \"{}\"", clean_text(name))]
+    NoVariable {
         /// The name.
         name: String,
         /// Names that there are.

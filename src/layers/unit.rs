@@ -17,6 +17,8 @@ pub enum LayerUnit {
     One,
     /// 1 for true, 0 for false.
     Truth,
+    /// Seconds since 1970-01-01T00:00:00Z.
+    Time,
     /// A zero-based index.
     Index,
     /// Not followed.
@@ -30,6 +32,7 @@ impl LayerUnit {
             Self::Kelvin | Self::KelvinDifference => "K",
             Self::Radiance => "mW m-2 sr-1 (cm-1)-1",
             Self::Degree => "degrees",
+            Self::Time => "s since 1970-01-01 UTC",
             Self::Truth => "1 true, 0 false",
             Self::One | Self::Index | Self::Unknown => "",
         }

@@ -4,6 +4,7 @@ use std::fmt;
 
 use crate::layers::names::NameError;
 use crate::layers::syntax::{Mistake, Span, near_names};
+use crate::system::clean_text;
 
 /// An expression that is well written but has no numbers here. Shown as a sentence, then the text
 /// with carets under the place.
@@ -30,10 +31,9 @@ impl LayerError {
         let what = error.to_string();
         let (mistake, cause) = match error {
             NameError::Unknown { name, known } => {
-                let near = near_names(name, known.iter().map(String::as_str));
-                let expected = if near.is_empty() { known.join(", ") } else { String::new() };
-                (Mistake::new(span.clone(), what, expected).near(near), Cause::UnknownName)
+                (among(span, what, name, known), Cause::UnknownName)
             }
+            NameError::NoVariable { name, known } => (among(span, what, name, known), Cause::File),
             _ => (Mistake::new(span.clone(), what, ""), Cause::File),
         };
         Self { text: text.to_owned(), mistake, cause }
@@ -61,6 +61,21 @@ impl LayerError {
     pub fn is_unknown_name(&self) -> bool {
         self.cause == Cause::UnknownName
     }
+}
+
+/// A name that is none of those known: the nearest are offered, or some where none is near.
+fn among(span: &Span, what: String, name: &str, known: &[String]) -> Mistake {
+    let near = near_names(name, known.iter().map(String::as_str));
+    let expected = if near.is_empty() { some_of(known) } else { String::new() };
+    Mistake::new(span.clone(), what, clean_text(&expected))
+        .near(near.iter().map(|name| clean_text(name)).collect())
+}
+
+/// As many names as fit a message.
+fn some_of(known: &[String]) -> String {
+    const SHOWN: usize = 12;
+    let more = if known.len() > SHOWN { ", …" } else { "" };
+    known.iter().take(SHOWN).cloned().collect::<Vec<_>>().join(", ") + more
 }
 
 impl fmt::Display for LayerError {

@@ -6,7 +6,8 @@ use super::layer::Layer;
 use super::leaves::Leaf;
 use super::plan::{Output, Plan, Step};
 use super::program::Source;
-use crate::layers::names::{Channel, Names};
+use crate::granule::Channel;
+use crate::layers::names::Names;
 use crate::layers::neighbours::neighbourhood;
 use crate::layers::syntax::Expression;
 

@@ -3,7 +3,8 @@
 use std::collections::HashMap;
 use std::ops::Range;
 
-use crate::layers::names::{Channel, NameError, Names, Values};
+use crate::granule::Channel;
+use crate::layers::names::{NameError, Names, Values};
 use crate::layers::neighbours::Neighbours;
 use crate::layers::syntax::Expression;
 use crate::layers::unit::LayerUnit;

@@ -5,7 +5,8 @@ use std::ops::Range;
 use rayon::prelude::*;
 
 use super::leaves::Leaf;
-use crate::layers::names::{Channel, Names};
+use crate::granule::Channel;
+use crate::layers::names::Names;
 use crate::layers::syntax::Quantity;
 use crate::spectral::{NoTemperature, brightness_temperature};
 

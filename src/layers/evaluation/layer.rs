@@ -1,6 +1,6 @@
 //! A layer: one number per footprint.
 
-use crate::layers::names::Channel;
+use crate::granule::Channel;
 use crate::layers::unit::LayerUnit;
 
 /// What an expression gives: one number per footprint.

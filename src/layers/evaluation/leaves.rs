@@ -1,6 +1,7 @@
 //! What an expression takes from the granule: the ends of its tree.
 
-use crate::layers::names::{Channel, Values};
+use crate::granule::Channel;
+use crate::layers::names::Values;
 use crate::layers::syntax::Quantity;
 
 /// Intervals wider than this (cm-1) are averaged with a note: the Planck function bends too much

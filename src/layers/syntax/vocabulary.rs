@@ -39,7 +39,11 @@ pub const FRIENDLY_NAMES: &[FriendlyName] = &[
         meaning: "azimuth angle of the sun, degrees",
     },
     FriendlyName { name: "land", unit: LayerUnit::One, meaning: "land fraction, 0 to 1" },
-    FriendlyName { name: "time", unit: LayerUnit::Unknown, meaning: "time, in the file's unit" },
+    FriendlyName {
+        name: "time",
+        unit: LayerUnit::Time,
+        meaning: "time, seconds since 1970-01-01 UTC without leap seconds",
+    },
 ];
 
 /// What a name followed by a parenthesis stands for.

@@ -1,0 +1,193 @@
+//! Footprints and their layers as CSV or JSON lines.
+
+use std::io::{self, Write};
+
+use serde::Serialize;
+use serde::ser::{SerializeMap, Serializer};
+
+use crate::granule::{FootprintGrid, Geolocation, Granule};
+use crate::layers::Layer;
+
+/// How a table is written.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Form {
+    /// One head line, then one line per footprint; missing is empty.
+    Csv,
+    /// One JSON object per footprint; missing is null.
+    JsonLines,
+}
+
+/// The columns before the layers, by their names.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Heading {
+    file: bool,
+    dimensions: Vec<String>,
+    latitude: bool,
+    longitude: bool,
+}
+
+impl Heading {
+    /// What a granule has; `file` where several files share the table.
+    pub fn of(granule: &Granule, file: bool) -> Self {
+        let place = granule.geolocation();
+        Self {
+            file,
+            dimensions: granule.footprints().names().to_vec(),
+            latitude: place.latitude.is_some(),
+            longitude: place.longitude.is_some(),
+        }
+    }
+
+    /// Why a granule's rows can't stand under this heading.
+    pub fn refuses(&self, granule: &Granule) -> Option<String> {
+        let dimensions = granule.footprints().names();
+        (dimensions != self.dimensions).then(|| {
+            format!(
+                "its footprint dimensions ({}) are not those of the files before it ({}), so its \
+                 rows don't fit into the same table; tabulate it on its own",
+                dimensions.join(", "),
+                self.dimensions.join(", ")
+            )
+        })
+    }
+
+    /// Columns of a granule that have no place under this heading.
+    pub fn lacks(&self, granule: &Granule) -> Vec<&'static str> {
+        let place = granule.geolocation();
+        let mut lacking = Vec::new();
+        lacking.extend((place.latitude.is_some() && !self.latitude).then_some("lat"));
+        lacking.extend((place.longitude.is_some() && !self.longitude).then_some("lon"));
+        lacking
+    }
+
+    /// Writes the head line.
+    pub fn write(&self, layers: &[String], out: &mut dyn Write) -> io::Result<()> {
+        let mut names: Vec<&str> = Vec::new();
+        names.extend(self.file.then_some("file"));
+        names.extend(self.dimensions.iter().map(String::as_str));
+        names.extend(self.latitude.then_some("lat"));
+        names.extend(self.longitude.then_some("lon"));
+        names.extend(layers.iter().map(String::as_str));
+        csv::Writer::from_writer(out).write_record(names).map_err(io::Error::from)
+    }
+}
+
+/// Writes the rows of one granule, footprints in row-major order.
+pub fn write_rows(
+    form: Form,
+    heading: &Heading,
+    file: &str,
+    granule: &Granule,
+    layers: &[Layer],
+    out: &mut dyn Write,
+) -> io::Result<()> {
+    let (grid, place) = (granule.footprints(), granule.geolocation());
+    let rows =
+        (0..grid.count()).map(|footprint| Row { heading, file, grid, place, layers, footprint });
+    match form {
+        Form::Csv => {
+            let mut writer = csv::Writer::from_writer(out);
+            for row in rows {
+                writer.write_record(row.cells()).map_err(io::Error::from)?;
+            }
+            writer.flush()
+        }
+        Form::JsonLines => {
+            for row in rows {
+                serde_json::to_writer(&mut *out, &row)?;
+                out.write_all(b"\n")?;
+            }
+            Ok(())
+        }
+    }
+}
+
+struct Row<'t> {
+    heading: &'t Heading,
+    file: &'t str,
+    grid: &'t FootprintGrid,
+    place: &'t Geolocation,
+    layers: &'t [Layer],
+    footprint: usize,
+}
+
+impl Row<'_> {
+    fn cells(&self) -> Vec<String> {
+        let mut cells = Vec::new();
+        cells.extend(self.heading.file.then(|| self.file.to_owned()));
+        cells.extend(self.grid.position(self.footprint).iter().map(usize::to_string));
+        cells.extend(self.heading.latitude.then(|| cell(self.value(&self.place.latitude))));
+        cells.extend(self.heading.longitude.then(|| cell(self.value(&self.place.longitude))));
+        cells.extend(self.layers.iter().map(|layer| cell(layer.values[self.footprint])));
+        cells
+    }
+
+    fn value(&self, field: &Option<Vec<f64>>) -> f64 {
+        field.as_ref().map_or(f64::NAN, |values| values[self.footprint])
+    }
+}
+
+impl Serialize for Row<'_> {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let mut row = serializer.serialize_map(None)?;
+        if self.heading.file {
+            row.serialize_entry("file", self.file)?;
+        }
+        for (name, index) in self.grid.names().iter().zip(self.grid.position(self.footprint)) {
+            row.serialize_entry(name, &index)?;
+        }
+        for (name, field) in [("lat", &self.place.latitude), ("lon", &self.place.longitude)] {
+            if field.is_some() {
+                row.serialize_entry(name, &present(self.value(field)))?;
+            }
+        }
+        for (at, layer) in self.layers.iter().enumerate() {
+            // A key must not come twice: `lat` may be asked for and is there already.
+            let there = |name: &str| name == layer.expression;
+            let known = self.grid.names().iter().any(|name| there(name))
+                || (there("lat") && self.place.latitude.is_some())
+                || (there("lon") && self.place.longitude.is_some())
+                || self.layers[..at].iter().any(|before| there(&before.expression));
+            if !known {
+                row.serialize_entry(&layer.expression, &present(layer.values[self.footprint]))?;
+            }
+        }
+        row.end()
+    }
+}
+
+/// A number for a cell: the shortest digits that read back as the same number; empty where missing.
+pub fn cell(value: f64) -> String {
+    if value.is_nan() {
+        String::new()
+    } else if value == 0.0 {
+        // Never "-0".
+        "0".to_owned()
+    } else if (1e-5..1e17).contains(&value.abs()) {
+        value.to_string()
+    } else {
+        format!("{value:e}")
+    }
+}
+
+/// A number for JSON, which has none for missing.
+pub fn present(value: f64) -> Option<f64> {
+    value.is_finite().then_some(value + 0.0)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn cells_read_back_as_the_same_number() {
+        for value in [287.123_456_789_012_3, -0.1, 1e-9, 1.5e300, 1.7e9 + 0.123, 5e-324] {
+            assert_eq!(cell(value).parse::<f64>().unwrap(), value);
+            assert!(cell(value).len() < 25, "{}", cell(value));
+        }
+        assert_eq!(cell(-0.0), "0");
+        assert_eq!(cell(f64::NAN), "");
+        assert_eq!(serde_json::to_string(&present(-0.0)).unwrap(), "0.0");
+        assert_eq!(serde_json::to_string(&present(f64::NAN)).unwrap(), "null");
+    }
+}

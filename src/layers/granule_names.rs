@@ -1,0 +1,185 @@
+//! A granule lends its names and numbers to expressions.
+
+use std::collections::BTreeMap;
+use std::ops::Range;
+use std::sync::OnceLock;
+
+use super::names::{NameError, Names, Values};
+use super::neighbours::Neighbours;
+use super::syntax::{Expression, FRIENDLY_NAMES};
+use super::unit::LayerUnit;
+use crate::granule::{Channel, Cube, Granule, Quantity};
+use crate::spectral::planck;
+
+/// The names of a granule: its channels, its geolocation, the indices of its footprint dimensions,
+/// its variables, and definitions that are lent to it.
+///
+/// Works while the cube is still being read; what is not here yet is missing, and the layers say
+/// so.
+pub struct GranuleNames<'g> {
+    granule: &'g Granule,
+    cube: &'g Cube,
+    definitions: Option<&'g BTreeMap<String, Expression>>,
+    kept: Option<&'g OnceLock<Neighbours>>,
+    own: OnceLock<Neighbours>,
+}
+
+impl<'g> GranuleNames<'g> {
+    /// The names of a granule over its cube.
+    pub fn new(granule: &'g Granule, cube: &'g Cube) -> Self {
+        Self { granule, cube, definitions: None, kept: None, own: OnceLock::new() }
+    }
+
+    /// With names that stand for expressions.
+    pub fn with_definitions(mut self, definitions: &'g BTreeMap<String, Expression>) -> Self {
+        self.definitions = Some(definitions);
+        self
+    }
+
+    /// Keeps the neighbours where the caller can lend them again: to find them takes longer than
+    /// any layer, and they are the same as long as the granule is.
+    pub fn keeping_neighbours(mut self, place: &'g OnceLock<Neighbours>) -> Self {
+        self.kept = Some(place);
+        self
+    }
+
+    fn field(&self, name: &str) -> Option<&[f64]> {
+        let fields = self.granule.geolocation();
+        let values = match name {
+            "lat" => &fields.latitude,
+            "lon" => &fields.longitude,
+            "view_zenith" => &fields.view_zenith,
+            "view_azimuth" => &fields.view_azimuth,
+            "solar_zenith" => &fields.solar_zenith,
+            "solar_azimuth" => &fields.solar_azimuth,
+            "land" => &fields.land_fraction,
+            "time" => &fields.time,
+            _ => return None,
+        };
+        values.as_deref()
+    }
+
+    /// The index of each footprint along a dimension.
+    fn index_along(&self, dimension: usize) -> Vec<f64> {
+        let lengths = self.granule.footprints().lengths();
+        let inner: usize = lengths[dimension + 1..].iter().product();
+        (0..self.footprints())
+            .map(|footprint| (footprint / inner.max(1) % lengths[dimension]) as f64)
+            .collect()
+    }
+
+    fn known_names(&self) -> Vec<String> {
+        let friendly = FRIENDLY_NAMES.iter().map(|field| field.name.to_owned());
+        let defined = self.definitions.into_iter().flat_map(|all| all.keys().cloned());
+        let dimensions = self.granule.footprints().names().iter().cloned();
+        let variables =
+            self.granule.variables().iter().map(|variable| format!("var(\"{}\")", variable.name));
+        friendly.chain(defined).chain(dimensions).chain(variables).collect()
+    }
+
+    fn find_neighbours(&self) -> Neighbours {
+        let lengths = self.granule.footprints().lengths();
+        let fields = self.granule.geolocation();
+        match (&fields.latitude, &fields.longitude) {
+            (Some(latitudes), Some(longitudes)) => {
+                Neighbours::by_ground(lengths, latitudes, longitudes)
+            }
+            _ => Neighbours::by_array(lengths),
+        }
+    }
+
+    fn values(&self, channels: &[Channel], footprints: &Range<usize>, out: &mut [f64]) {
+        if footprints.is_empty() {
+            return;
+        }
+        for (channel, out) in channels.iter().zip(out.chunks_mut(footprints.len())) {
+            self.cube.channel_over(channel.band, channel.index, footprints.clone(), out);
+        }
+    }
+}
+
+impl Names for GranuleNames<'_> {
+    fn footprints(&self) -> usize {
+        self.cube.footprints()
+    }
+
+    fn channel_near(&self, wavenumber: f64) -> Result<Channel, NameError> {
+        self.granule.channel_near(wavenumber).map_err(|error| NameError::NoChannel {
+            wanted: error.wavenumber,
+            nearest: error.nearest.map(|channel| channel.wavenumber),
+        })
+    }
+
+    fn channels_between(&self, low: f64, high: f64) -> Vec<Channel> {
+        self.granule.channels_between(low, high)
+    }
+
+    fn stores_temperature(&self, channel: &Channel) -> bool {
+        let band = self.granule.bands().get(channel.band);
+        band.is_some_and(|band| matches!(band.quantity, Quantity::BrightnessTemperature(_)))
+    }
+
+    fn radiances(&self, channels: &[Channel], footprints: Range<usize>, out: &mut [f64]) {
+        let length = footprints.len();
+        self.values(channels, &footprints, out);
+        for (channel, out) in channels.iter().zip(out.chunks_mut(length.max(1))) {
+            if self.stores_temperature(channel) {
+                out.iter_mut().for_each(|value| *value = planck(channel.wavenumber, *value));
+            }
+        }
+    }
+
+    fn temperatures(&self, channels: &[Channel], footprints: Range<usize>, out: &mut [f64]) {
+        self.values(channels, &footprints, out);
+    }
+
+    fn is_complete(&self, channel: &Channel) -> bool {
+        self.cube.is_complete(channel.band)
+    }
+
+    fn named(&self, name: &str) -> Result<Values, NameError> {
+        if let Some(friendly) = FRIENDLY_NAMES.iter().find(|friendly| friendly.name == name) {
+            return match self.field(name) {
+                Some(values) => Ok(Values { values: values.to_vec(), unit: friendly.unit }),
+                None => Err(NameError::NotInFile(format!("{name} ({})", friendly.meaning))),
+            };
+        }
+        let dimensions = self.granule.footprints().names();
+        match dimensions.iter().position(|dimension| dimension == name) {
+            Some(dimension) => {
+                Ok(Values { values: self.index_along(dimension), unit: LayerUnit::Index })
+            }
+            None => Err(NameError::Unknown { name: name.to_owned(), known: self.known_names() }),
+        }
+    }
+
+    fn variable(&self, name: &str) -> Result<Values, NameError> {
+        let Some(variable) = self.granule.variable(name) else {
+            let all = self.granule.variables().iter();
+            let known = all.map(|variable| variable.name.clone()).collect();
+            return Err(NameError::NoVariable { name: name.to_owned(), known });
+        };
+        match self.granule.read_variable(name) {
+            Ok(values) => Ok(Values { values, unit: unit_of(&variable.units) }),
+            Err(error) => Err(NameError::Unreadable(error.to_string())),
+        }
+    }
+
+    fn definition(&self, name: &str) -> Option<&Expression> {
+        self.definitions?.get(name)
+    }
+
+    fn neighbours(&self) -> &Neighbours {
+        self.kept.unwrap_or(&self.own).get_or_init(|| self.find_neighbours())
+    }
+}
+
+/// The unit of a variable, as far as layers follow units.
+fn unit_of(text: &str) -> LayerUnit {
+    match text.trim() {
+        "K" | "kelvin" => LayerUnit::Kelvin,
+        "1" => LayerUnit::One,
+        text if text.starts_with("degree") && !text.contains(['C', 'F']) => LayerUnit::Degree,
+        _ => LayerUnit::Unknown,
+    }
+}
