@@ -1,12 +1,128 @@
-//! `radsieve export`.
+//! `radsieve export`: masks and lists from the ledgers.
 
-use super::Exit;
+use std::path::{Path, PathBuf};
+
+use anyhow::Context;
+use serde_json::json;
+
+use super::{Exit, surroundings};
+use crate::export::{Exported, Exporter, Form, Provenance};
+use crate::flags::Campaign;
+use crate::granule::Granule;
+use crate::netcdf_files::ReadLimits;
+use crate::system::clean_text;
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
-pub struct Arguments {}
+pub struct Arguments {
+    /// Granules; equal names from different folders never overwrite each other's masks.
+    #[arg(required = true, value_name = "FILES")]
+    files: Vec<PathBuf>,
+    /// The campaign folder with the ledgers; it is only read.
+    #[arg(long, value_name = "DIR", default_value = surroundings::DEFAULT_CAMPAIGN)]
+    campaign: PathBuf,
+    /// Where to write; made if it is not there. The granules are never written to.
+    #[arg(long, value_name = "DIR")]
+    out: PathBuf,
+    /// A CF flag mask for each granule, or the list of its usable footprints.
+    #[arg(long, value_enum, default_value_t = Format::Nc)]
+    format: Format,
+    /// Print a summary as JSON instead of the names of the files written.
+    #[arg(long)]
+    json: bool,
+}
+
+#[derive(Debug, Clone, Copy, clap::ValueEnum)]
+enum Format {
+    /// `<stem>.mask.nc`: flags, review state and channel flags that line up with the radiances.
+    Nc,
+    /// `<stem>.usable.csv`: indices and positions of the footprints that a retrieval may use.
+    Csv,
+}
+
+impl From<Format> for Form {
+    fn from(format: Format) -> Self {
+        match format {
+            Format::Nc => Form::Mask,
+            Format::Csv => Form::UsableList,
+        }
+    }
+}
 
 /// Runs the command.
-pub fn run(_arguments: Arguments) -> anyhow::Result<Exit> {
-    anyhow::bail!("export is not part of this version yet")
+pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    let campaign = Campaign::open(&arguments.campaign)?;
+    for problem in &campaign.settings().problems {
+        eprintln!("radsieve: {}", clean_text(problem));
+    }
+    let program = surroundings::reader_program()?;
+    let provenance = Provenance {
+        program: env!("CARGO_PKG_VERSION").to_owned(),
+        now: surroundings::now()?,
+        person: surroundings::person(),
+        campaign: campaign.settings().title.clone(),
+        ledger_problems: Vec::new(),
+    };
+    let files = arguments.files;
+    std::fs::create_dir_all(&arguments.out)
+        .with_context(|| format!("cannot make the folder {}", arguments.out.display()))?;
+    let form = arguments.format.into();
+    let mut exporter = Exporter::new(&campaign, &program, provenance, form, &arguments.out, &files);
+    let mut results = Vec::new();
+    for file in &files {
+        let granule = Granule::open(&program, file, &ReadLimits::default());
+        let result = granule.map_err(Into::into).and_then(|granule| exporter.export(&granule));
+        let result = result.map_err(|error: crate::export::NotExported| error.to_string());
+        tell(file, &result, arguments.json);
+        results.push((file.as_path(), result));
+    }
+    if arguments.json {
+        println!("{}", summary(&results));
+    }
+    Ok(exit(results.iter().filter(|(_, result)| result.is_err()).count(), results.len()))
+}
+
+fn exit(failed: usize, all: usize) -> Exit {
+    match failed {
+        0 => Exit::Done,
+        failed if failed < all => Exit::SomeFailed,
+        _ => Exit::Failed,
+    }
+}
+
+/// Messages on standard error; the file's name on standard output, for scripts.
+fn tell(file: &Path, result: &Result<Exported, String>, json: bool) {
+    let file = clean_text(&file.display().to_string());
+    match result {
+        Ok(exported) => {
+            for message in &exported.messages {
+                eprintln!("radsieve: {file}: {}", clean_text(message));
+            }
+            if !json {
+                println!("{}", exported.path.display());
+            }
+        }
+        // Messages of granules begin with the path already.
+        Err(error) if error.starts_with(&file) => eprintln!("radsieve: {}", clean_text(error)),
+        Err(error) => eprintln!("radsieve: {file}: {}", clean_text(error)),
+    }
+}
+
+fn summary(results: &[(&Path, Result<Exported, String>)]) -> serde_json::Value {
+    let entry = |(file, result): &(&Path, Result<Exported, String>)| {
+        let file = file.display().to_string();
+        match result {
+            Ok(exported) => json!({
+                "file": file,
+                "written": exported.path.display().to_string(),
+                "granule_state": exported.state,
+                "decisions": exported.decisions,
+                "reviewers": exported.people,
+                "counts": exported.counts,
+                "messages": exported.messages,
+            }),
+            Err(error) => json!({ "file": file, "error": error }),
+        }
+    };
+    json!({ "schema": 1, "files": results.iter().map(entry).collect::<Vec<_>>() })
 }

@@ -16,6 +16,7 @@ mod planck;
 mod reader;
 mod review;
 mod spectrum;
+mod surroundings;
 mod synth;
 mod table;
 mod tabulate;

@@ -148,13 +148,12 @@ impl<'a> Mask<'a> {
         if self.source.longitude.is_some() {
             writer.variable(&degrees(&self.longitude, "longitude", "degrees_east"))?;
         }
-        if let Some(time) = &self.source.time {
-            let calendar = time.calendar.as_deref().unwrap_or("standard");
+        if self.source.time.is_some() {
             let draft = draft(&self.time)
                 .attribute("standard_name", "time")
                 .attribute("long_name", "time of the footprint")
-                .attribute("units", time.units.as_str())
-                .attribute("calendar", calendar);
+                .attribute("units", "seconds since 1970-01-01 00:00:00")
+                .attribute("calendar", "standard");
             writer.variable(&draft)?;
         }
         Ok(())
@@ -253,8 +252,8 @@ impl<'a> Mask<'a> {
         if let Some(values) = &self.source.longitude {
             writer.put_all(&self.longitude, &filled(values))?;
         }
-        if let Some(time) = &self.source.time {
-            writer.put_all(&self.time, &filled(&time.values))?;
+        if let Some(values) = &self.source.time {
+            writer.put_all(&self.time, &filled(values))?;
         }
         let whole = state.footprint_flags.iter().map(|&flags| signed(flags)).collect();
         writer.put_all("footprint_flag", &Samples::I32(whole))?;

@@ -29,11 +29,7 @@ pub(super) fn source() -> MaskSource {
         bands: vec![band("lw", "wnum_lw", 650.0), band("sw", "wnum_sw", 2155.0)],
         latitude: Some((0..12).map(f64::from).collect()),
         longitude: Some((0..12).map(|at| if at == 3 { f64::NAN } else { f64::from(at) }).collect()),
-        time: Some(MaskTime {
-            values: (0..12).map(f64::from).collect(),
-            units: "seconds since 2000-01-01 00:00:00".to_owned(),
-            calendar: None,
-        }),
+        time: Some((0..12).map(f64::from).collect()),
         problems: vec!["apodisation is not named".to_owned()],
     }
 }

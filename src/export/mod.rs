@@ -6,17 +6,21 @@
 
 mod attributes;
 mod channel_axes;
+mod exporter;
 mod mask;
 #[cfg(test)]
 mod mask_tests;
+mod of_granule;
 mod provenance;
 mod source;
 mod target;
 mod usable_list;
 
 pub use attributes::CAUTIONS;
+pub use exporter::{Exported, Exporter, Form, NotExported};
 pub use mask::{ExportError, write_mask};
+pub use of_granule::granule_identity;
 pub use provenance::{Provenance, Record};
-pub use source::{MaskBand, MaskSource, MaskTime};
+pub use source::{MaskBand, MaskSource};
 pub use target::{Chosen, NoTarget, Owner, Targets, mask_owner};
 pub use usable_list::{list_owner, write_usable_list};

@@ -13,17 +13,6 @@ pub struct MaskBand {
     pub wavenumbers: Vec<f64>,
 }
 
-/// Times of footprints as the granule counts them.
-#[derive(Debug, Clone, PartialEq)]
-pub struct MaskTime {
-    /// One per footprint; NaN is missing.
-    pub values: Vec<f64>,
-    /// Such as `seconds since 2000-01-01 00:00:00`.
-    pub units: String,
-    /// The granule's calendar, if it names one.
-    pub calendar: Option<String>,
-}
-
 /// What a mask takes over from its granule.
 #[derive(Debug, Clone, PartialEq)]
 pub struct MaskSource {
@@ -47,8 +36,8 @@ pub struct MaskSource {
     pub latitude: Option<Vec<f64>>,
     /// Degrees east, one per footprint; NaN is missing.
     pub longitude: Option<Vec<f64>>,
-    /// Times, if known.
-    pub time: Option<MaskTime>,
+    /// Seconds since 1970-01-01T00:00:00Z, leap seconds not counted; NaN is missing.
+    pub time: Option<Vec<f64>>,
     /// What was missing or guessed when the granule was read, in words.
     pub problems: Vec<String>,
 }

@@ -16,6 +16,17 @@ const MOST_DECISIONS: usize = 1_000_000;
 /// After so many broken lines the rest of a file is only counted.
 const MOST_BROKEN: usize = 20;
 
+/// What a problem costs.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Loss {
+    /// No decision that anybody was told is kept.
+    Nothing,
+    /// A decision.
+    Line,
+    /// A whole file of decisions: flags made without them would mislead.
+    File,
+}
+
 /// Something in a ledger that could not be taken as it stands.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct LedgerProblem {
@@ -25,8 +36,8 @@ pub struct LedgerProblem {
     pub line: u64,
     /// What it is, in words.
     pub what: String,
-    /// Whether decisions exist that could not be read at all, so that the flags are incomplete.
-    pub hides_decisions: bool,
+    /// What is lost by it.
+    pub loss: Loss,
 }
 
 impl fmt::Display for LedgerProblem {
@@ -55,7 +66,7 @@ pub fn read_ledgers(campaign: &Campaign, granule: &GranuleIdentity) -> LedgerRea
     let mut gathering = Gathering::default();
     match campaign.ledger_folders(granule) {
         Ok(folders) => folders.iter().for_each(|folder| gathering.folder(folder, granule)),
-        Err(error) => gathering.problem(campaign.folder(), 0, unreadable(&error), true),
+        Err(error) => gathering.problem(campaign.folder(), 0, unreadable(&error), Loss::File),
     }
     gathering.finish()
 }
@@ -73,16 +84,16 @@ struct Gathering {
 }
 
 impl Gathering {
-    fn problem(&mut self, path: &Path, line: u64, what: String, hides_decisions: bool) {
+    fn problem(&mut self, path: &Path, line: u64, what: String, loss: Loss) {
         let what = clean_text(&what);
-        self.problems.push(LedgerProblem { path: path.to_owned(), line, what, hides_decisions });
+        self.problems.push(LedgerProblem { path: path.to_owned(), line, what, loss });
     }
 
     fn folder(&mut self, folder: &Path, granule: &GranuleIdentity) {
         let listed = std::fs::read_dir(folder).and_then(Iterator::collect::<io::Result<Vec<_>>>);
         let mut paths: Vec<PathBuf> = match listed {
             Ok(entries) => entries.into_iter().map(|entry| entry.path()).collect(),
-            Err(error) => return self.problem(folder, 0, unreadable(&error), true),
+            Err(error) => return self.problem(folder, 0, unreadable(&error), Loss::File),
         };
         paths.retain(|path| path.extension().is_some_and(|extension| extension == "jsonl"));
         // The order of a folder's listing is an accident.
@@ -90,7 +101,7 @@ impl Gathering {
         for path in paths {
             self.files += 1;
             if let Err(error) = self.file(&path, granule) {
-                self.problem(&path, 0, unreadable(&error), true);
+                self.problem(&path, 0, unreadable(&error), Loss::File);
             }
         }
     }
@@ -98,7 +109,7 @@ impl Gathering {
     fn file(&mut self, path: &Path, granule: &GranuleIdentity) -> io::Result<()> {
         // A pipe or device of that name would block for ever.
         if !std::fs::metadata(path)?.is_file() {
-            self.problem(path, 0, "is no ordinary file".to_owned(), false);
+            self.problem(path, 0, "is no ordinary file".to_owned(), Loss::Nothing);
             return Ok(());
         }
         let mut lines = Lines::new(std::fs::File::open(path)?);
@@ -106,7 +117,7 @@ impl Gathering {
         let mut broken = 0;
         while let Some(line) = lines.next()? {
             if self.count >= MOST_DECISIONS {
-                self.problem(path, line.number, "too many decisions".to_owned(), true);
+                self.problem(path, line.number, "too many decisions".to_owned(), Loss::File);
                 return Ok(());
             }
             match line.text.map(|text| read_decision(text, &header)) {
@@ -117,17 +128,17 @@ impl Gathering {
                     if torn {
                         let what = "the last line was cut off while it was being written; it does \
                                     not count";
-                        self.problem(path, line.number, what.to_owned(), false);
+                        self.problem(path, line.number, what.to_owned(), Loss::Nothing);
                     } else if broken <= MOST_BROKEN {
                         let what = format!("does not count: {what}");
-                        self.problem(path, line.number, what, true);
+                        self.problem(path, line.number, what, Loss::Line);
                     }
                 }
             }
         }
         if broken > MOST_BROKEN {
             let what = format!("{broken} lines in all do not count");
-            self.problem(path, 0, what, true);
+            self.problem(path, 0, what, Loss::Line);
         }
         Ok(())
     }
@@ -140,7 +151,7 @@ impl Gathering {
     ) -> io::Result<Option<Header>> {
         let Some(line) = lines.next()? else {
             let what = "is empty: its writer was stopped before the first decision";
-            self.problem(path, 0, what.to_owned(), false);
+            self.problem(path, 0, what.to_owned(), Loss::Nothing);
             return Ok(None);
         };
         let parsed = line.text.map_err(|_| HeaderError::NoLedger).and_then(Header::parse);
@@ -148,7 +159,7 @@ impl Gathering {
             Ok(header) if header.granule.hash == granule.hash => return Ok(Some(header)),
             Ok(_) => {
                 let what = "is about another granule; it does not count here";
-                self.problem(path, 1, what.to_owned(), false);
+                self.problem(path, 1, what.to_owned(), Loss::Nothing);
             }
             Err(HeaderError::Newer(version)) => {
                 let what = format!(
@@ -156,14 +167,14 @@ impl Gathering {
                      use a newer version of the program",
                     super::LEDGER_VERSION
                 );
-                self.problem(path, 1, what, true);
+                self.problem(path, 1, what, Loss::File);
             }
             Err(HeaderError::NoLedger) if line.torn => {
                 let what = "was cut off in its first line, before the first decision";
-                self.problem(path, 1, what.to_owned(), false);
+                self.problem(path, 1, what.to_owned(), Loss::Nothing);
             }
             Err(HeaderError::NoLedger) => {
-                self.problem(path, 1, "the first line is no ledger header".to_owned(), true);
+                self.problem(path, 1, "the first line is no ledger header".to_owned(), Loss::File);
             }
         }
         Ok(None)
@@ -181,7 +192,7 @@ impl Gathering {
         self.count += 1;
         if doubled {
             let what = "has the number of another decision by the same writer; both count";
-            self.problem(path, line, what.to_owned(), false);
+            self.problem(path, line, what.to_owned(), Loss::Nothing);
         }
     }
 

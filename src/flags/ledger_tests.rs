@@ -165,7 +165,7 @@ fn a_torn_last_line_is_reported_and_left_as_it_is() {
         let decisions = fixture.read().decisions.len();
         let taken = whole.saturating_sub(1);
         assert!(decisions == taken || decisions == taken + 1, "cut at {cut}: {decisions}");
-        assert!(fixture.read().problems.iter().all(|problem| !problem.hides_decisions));
+        assert!(fixture.read().problems.iter().all(|problem| problem.loss == Loss::Nothing));
         assert_eq!(std::fs::read_to_string(&path).unwrap(), text[..cut]);
     }
     std::fs::write(&path, &text[..text.len() - 10]).unwrap();
@@ -186,7 +186,7 @@ fn a_broken_middle_line_is_named_and_the_others_count() {
         assert_eq!(reading.decisions.len(), 2, "{broken:?}");
         assert_eq!(reading.problems.len(), 1, "{broken:?}");
         assert_eq!(reading.problems[0].line, 3);
-        assert!(reading.problems[0].hides_decisions);
+        assert_eq!(reading.problems[0].loss, Loss::Line);
     }
 }
 
@@ -197,7 +197,7 @@ fn a_newer_format_says_so() {
     std::fs::write(&path, text.replacen("\"version\":1", "\"version\":2", 1)).unwrap();
     let reading = fixture.read();
     assert_eq!(reading.decisions, []);
-    assert!(reading.problems[0].hides_decisions);
+    assert_eq!(reading.problems[0].loss, Loss::File);
     assert!(reading.problems[0].what.contains("use a newer version"), "{}", reading.problems[0]);
 }
 

@@ -34,7 +34,7 @@ pub use decision::{Act, ChannelName, Decision, DecisionId, Origin};
 pub use footprint_set::FootprintSet;
 pub use history::{redo_target, standing, undo_target};
 pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};
-pub use ledger_reader::{LedgerProblem, LedgerReading, read_ledgers};
+pub use ledger_reader::{LedgerProblem, LedgerReading, Loss, read_ledgers};
 pub use ledger_writer::{LedgerEvent, LedgerWriter, NotKept};
 pub use review_state::{GranuleState, ReviewState};
 pub use state::{ChannelFlags, Counts, FlagState};
