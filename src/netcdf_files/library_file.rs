@@ -18,8 +18,6 @@ const DEEPEST_GROUP: usize = 32;
 const MOST_ENTRIES: usize = 50_000;
 /// Attributes longer than this are no metadata, and are left out of the index.
 const LONGEST_ATTRIBUTE: usize = 1 << 20;
-/// Smaller variables are not worth asking how they are stored.
-const WORTH_ASKING_STORAGE: usize = 1024;
 
 /// What the library said when it refused.
 pub type Refusal = String;
@@ -226,7 +224,6 @@ impl Walk {
             .iter()
             .map(|dimension| self.dimension(group, dimension))
             .collect();
-        let big = variable.len() >= WORTH_ASKING_STORAGE;
         Some(Variable {
             path: path.to_owned(),
             name,
@@ -234,7 +231,7 @@ impl Walk {
             dimensions: dimensions?,
             kind: calmly(|| kind_of(&variable.vartype())).unwrap_or(ValueKind::Other),
             attributes: self.attributes(path, variable.attributes()),
-            storage: storage_of(variable, path, self.storage.as_ref().filter(|_| big)),
+            storage: storage_of(variable, path, self.storage.as_ref()),
         })
     }
 

@@ -33,7 +33,7 @@ pub enum ReadFault {
     Empty,
     /// The first bytes are of another kind of file.
     #[error(
-        "is neither netCDF nor HDF5 (it begins with {0}): fetch it again, or give the right file"
+        "is neither netCDF nor HDF5 (it begins with \"{0}\"): fetch it again, or give the right file"
     )]
     OtherFormat(String),
     /// The library refused.

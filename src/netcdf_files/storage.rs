@@ -34,10 +34,13 @@ pub fn storage_of(
     path: &str,
     view: Option<&StorageView>,
 ) -> Storage {
+    let chunks = variable.chunking().ok().flatten();
+    // Only chunks pass filters; values in one piece need not be asked about.
+    let view = view.filter(|_| chunks.is_some());
     let (filters, missing_filter) = view.map(|view| view.filters(path)).unwrap_or_default();
     let endianness = variable.endianness();
     Storage {
-        chunks: variable.chunking().ok().flatten(),
+        chunks,
         filters,
         missing_filter,
         big_endian: matches!(endianness, Ok(netcdf::Endianness::Big)),
