@@ -8,7 +8,7 @@ use serde_json::{Map, Value};
 
 use super::Exit;
 use super::exit::UsageError;
-use super::table::{cell, present};
+use super::table::{cell, present, stream_error};
 use crate::granule::{Band, FootprintGrid, Granule};
 use crate::netcdf_files::{ReadLimits, ReaderProgram};
 
@@ -101,13 +101,13 @@ fn bands(granule: &Granule, footprint: usize) -> anyhow::Result<Vec<BandSpectrum
 fn write_csv(bands: &[BandSpectrum], out: &mut dyn Write) -> io::Result<()> {
     let mut writer = csv::Writer::from_writer(out);
     let head = ["band", "wavenumber_cm-1", "radiance_mW_m-2_sr-1_(cm-1)-1", "bt_K"];
-    writer.write_record(head).map_err(io::Error::from)?;
+    writer.write_record(head).map_err(stream_error)?;
     for band in bands {
         let values = band.radiances.iter().zip(&band.temperatures);
         for (wavenumber, (radiance, temperature)) in band.wavenumbers.iter().zip(values) {
             let numbers = [*wavenumber, *radiance, *temperature].map(cell);
             let row = std::iter::once(&band.name).chain(&numbers);
-            writer.write_record(row).map_err(io::Error::from)?;
+            writer.write_record(row).map_err(stream_error)?;
         }
     }
     writer.flush()

@@ -68,7 +68,7 @@ impl Heading {
         names.extend(self.latitude.then_some("lat"));
         names.extend(self.longitude.then_some("lon"));
         names.extend(layers.iter().map(String::as_str));
-        csv::Writer::from_writer(out).write_record(names).map_err(io::Error::from)
+        csv::Writer::from_writer(out).write_record(names).map_err(stream_error)
     }
 }
 
@@ -88,7 +88,7 @@ pub fn write_rows(
         Form::Csv => {
             let mut writer = csv::Writer::from_writer(out);
             for row in rows {
-                writer.write_record(row.cells()).map_err(io::Error::from)?;
+                writer.write_record(row.cells()).map_err(stream_error)?;
             }
             writer.flush()
         }
@@ -153,6 +153,14 @@ impl Serialize for Row<'_> {
             }
         }
         row.end()
+    }
+}
+
+/// The error of the stream beneath: a reader that went away must be told from other failures.
+pub fn stream_error(error: csv::Error) -> io::Error {
+    match error.into_kind() {
+        csv::ErrorKind::Io(error) => error,
+        other => io::Error::other(format!("{other:?}")),
     }
 }
 

@@ -6,6 +6,7 @@ mod describe;
 mod export;
 mod hostile;
 mod manual;
+mod plain_granule;
 mod planck;
 mod samples;
 mod spectrum;
