@@ -48,12 +48,12 @@ pub(super) const VIK: [Rgb; LEVELS] = [
     [137, 38, 6], [122, 26, 6], [108, 14, 7], [94, 3, 8],
 ];
 // The same maps in the 256 indexed colours. The nearest colour of each level alone would jump back
-// and forth in lightness, which reads as structure that is not there; so these are the rows of
-// nearest colours (CIELAB) whose lightness only rises, or for `VIK` rises to the middle and falls.
+// and forth in lightness, which reads as structure that is not there; so these are rows of near
+// colours whose lightness only rises, or for `VIK` rises to the middle and falls.
 
 #[rustfmt::skip]
 pub(super) const VIRIDIS_INDICES: [u8; LEVELS] = [
-    53, 53, 53, 53, 53, 25, 25, 25, 60, 60, 60, 60, 30, 30, 30, 30,
+    53, 53, 53, 54, 54, 54, 24, 24, 24, 24, 24, 30, 30, 30, 30, 30,
     30, 30, 36, 36, 36, 71, 78, 78, 113, 113, 113, 148, 148, 184, 184, 220,
 ];
 

@@ -159,3 +159,71 @@ impl Theme {
         pinned.map_or(Style::new(), |number| self.flag_tint(1 + (number % 7) as u8))
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    const TONES: [Tone; 8] = [
+        Tone::Plain,
+        Tone::Faint,
+        Tone::Strong,
+        Tone::Good,
+        Tone::Warning,
+        Tone::Bad,
+        Tone::Accent,
+        Tone::Chosen,
+    ];
+
+    fn theme(depth: ColourDepth, background: Background) -> Theme {
+        Theme { depth, ascii: false, background }
+    }
+
+    #[test]
+    fn without_colours_no_style_has_one() {
+        let theme = theme(ColourDepth::None, Background::Dark);
+        let mut styles: Vec<Style> = TONES.map(|tone| theme.style(tone)).to_vec();
+        styles.extend((0..8).map(|tint| theme.flag_tint(tint)));
+        styles.extend([theme.mark(), theme.sign_on(true, true), theme.curve(Some(2))]);
+        for style in styles {
+            assert_eq!((style.fg, style.bg), (None, None));
+        }
+    }
+
+    #[test]
+    fn text_never_has_a_ground_of_its_own() {
+        for depth in [ColourDepth::Sixteen, ColourDepth::Indexed, ColourDepth::True] {
+            for background in [Background::Dark, Background::Light] {
+                for tone in TONES {
+                    assert_eq!(theme(depth, background).style(tone).bg, None);
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn tints_differ_and_suit_the_ground() {
+        let dark = theme(ColourDepth::Indexed, Background::Dark);
+        let light = theme(ColourDepth::Indexed, Background::Light);
+        for tint in 0..8 {
+            assert_ne!(dark.flag_tint(tint).fg, light.flag_tint(tint).fg);
+            for other in 0..tint {
+                assert_ne!(dark.flag_tint(tint).fg, dark.flag_tint(other).fg);
+                assert_ne!(light.flag_tint(tint).fg, light.flag_tint(other).fg);
+            }
+        }
+    }
+
+    #[test]
+    fn the_ground_is_read_from_the_usual_variable() {
+        for (value, expected) in [
+            (None, Background::Dark),
+            (Some("15;0"), Background::Dark),
+            (Some("0;15"), Background::Light),
+            (Some("0;default;7"), Background::Light),
+            (Some("nonsense"), Background::Dark),
+        ] {
+            assert_eq!(Background::from_colorfgbg(value), expected, "{value:?}");
+        }
+    }
+}

@@ -141,3 +141,81 @@ pub fn draw_too_small(area: Rect, buffer: &mut Buffer) {
         );
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::ui::widgets::Screen;
+    use proptest::prelude::*;
+
+    #[test]
+    fn the_smallest_screen_shows_every_pane() {
+        let layout = ScreenLayout::of(Rect::new(0, 0, 80, 24), None).unwrap();
+        assert_eq!(layout.tray, Some(Rect::new(0, 0, 17, 13)));
+        assert_eq!(layout.field, Some(Rect::new(17, 0, 36, 13)));
+        assert_eq!(layout.evidence, Some(Rect::new(53, 0, 27, 13)));
+        assert_eq!(layout.trace, Some(Rect::new(0, 13, 80, 9)));
+        assert_eq!(layout.status, Rect::new(0, 22, 80, 1));
+        assert_eq!(layout.command, Rect::new(0, 23, 80, 1));
+    }
+
+    #[test]
+    fn a_zoomed_pane_has_the_screen_but_for_the_last_two_lines() {
+        let layout = ScreenLayout::of(Rect::new(0, 0, 120, 40), Some(Pane::Trace)).unwrap();
+        assert_eq!(layout.trace, Some(Rect::new(0, 0, 120, 38)));
+        assert_eq!((layout.tray, layout.field, layout.evidence), (None, None, None));
+    }
+
+    #[test]
+    fn a_screen_that_is_too_small_says_what_it_needs() {
+        assert_eq!(ScreenLayout::of(Rect::new(0, 0, 79, 24), None), None);
+        let mut screen = Screen::new(30, 4);
+        draw_too_small(screen.area(), &mut screen.buffer);
+        assert_eq!(
+            screen.lines(),
+            [
+                "radsieve needs more room",
+                "80x24 at least, now 30x4",
+                "nothing is lost; q leaves",
+                "",
+            ]
+        );
+    }
+
+    #[test]
+    fn the_focus_goes_round_both_ways() {
+        let round = Pane::ALL.iter().fold(Pane::Field, |pane, _| pane.step(true));
+        assert_eq!(round, Pane::Field);
+        for pane in Pane::ALL {
+            assert_eq!(pane.step(true).step(false), pane);
+        }
+    }
+
+    proptest! {
+        #[test]
+        fn panes_tile_the_screen(width in 80u16..300, height in 24u16..120) {
+            let screen = Rect::new(0, 0, width, height);
+            let layout = ScreenLayout::of(screen, None).unwrap();
+            let mut areas: Vec<Rect> =
+                Pane::ALL.iter().filter_map(|pane| layout.area(*pane)).collect();
+            areas.extend([layout.status, layout.command]);
+            let covered: u32 = areas.iter().map(|area| area.area()).sum();
+            prop_assert_eq!(covered, screen.area());
+            for (index, one) in areas.iter().enumerate() {
+                prop_assert_eq!(one.intersection(screen), *one);
+                prop_assert!(areas[index + 1..].iter().all(|other| !one.intersects(*other)));
+            }
+            for pane in Pane::ALL {
+                let area = layout.area(pane).unwrap();
+                prop_assert_eq!(layout.pane_at(area.right() - 1, area.y), Some(pane));
+            }
+        }
+
+        #[test]
+        fn any_size_is_survived(width in 0u16..250, height in 0u16..80) {
+            let mut screen = Screen::new(width, height);
+            draw_too_small(screen.area(), &mut screen.buffer);
+            ScreenLayout::of(screen.area(), Some(Pane::Field));
+        }
+    }
+}

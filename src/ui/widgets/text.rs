@@ -14,6 +14,9 @@ pub(in crate::ui) fn clip(area: Rect, buffer: &Buffer) -> Option<Rect> {
 
 /// The text if it fits, else its beginning with a sign that something was cut.
 pub(in crate::ui) fn cut(text: &str, width: usize, ascii: bool) -> String {
+    if ascii && !text.is_ascii() {
+        return cut(&spelled_out(text), width, ascii);
+    }
     if text.width() <= width {
         return text.to_string();
     }
@@ -23,6 +26,33 @@ pub(in crate::ui) fn cut(text: &str, width: usize, ascii: bool) -> String {
     let mut kept = fitting(text, width - 1).to_string();
     kept.push(if ascii { '~' } else { '…' });
     kept
+}
+
+/// A text in ASCII alone, for terminals without more.
+fn spelled_out(text: &str) -> String {
+    let mut plain = String::with_capacity(text.len());
+    for letter in text.chars() {
+        match letter {
+            _ if letter.is_ascii() => plain.push(letter),
+            'µ' | 'μ' => plain.push('u'),
+            'ν' => plain.push('v'),
+            '·' | '−' | '–' | '—' => plain.push('-'),
+            '±' => plain.push_str("+-"),
+            '…' => plain.push_str("..."),
+            '°' => plain.push_str("deg"),
+            '→' => plain.push_str("->"),
+            '←' => plain.push_str("<-"),
+            '↑' => plain.push('^'),
+            '↓' => plain.push('v'),
+            '≥' => plain.push_str(">="),
+            '≤' => plain.push_str("<="),
+            '×' => plain.push('x'),
+            '²' => plain.push('2'),
+            '³' => plain.push('3'),
+            _ => plain.push('?'),
+        }
+    }
+    plain
 }
 
 /// The longest beginning of a text that is not wider than this.
@@ -58,8 +88,9 @@ pub(in crate::ui) fn put_right(
     ascii: bool,
     buffer: &mut Buffer,
 ) -> u16 {
-    let width = text.width().min(usize::from(line.width)) as u16;
-    put(Rect { x: line.x + (line.width - width), width, ..line }, text, style, ascii, buffer)
+    let text = cut(text, usize::from(line.width), ascii);
+    let width = text.width() as u16;
+    put(Rect { x: line.x + (line.width - width), width, ..line }, &text, style, ascii, buffer)
 }
 
 /// Breaks a text into lines at its spaces; a word that is wider than a line is broken anywhere.
@@ -114,6 +145,7 @@ mod tests {
         assert_eq!(cut("Sea of Lowen", 7, true), "Sea of~");
         assert_eq!(cut("輝度温度", 5, false), "輝度…", "each sign is two columns wide");
         assert_eq!(cut("輝度温度", 0, false), "");
+        assert_eq!(cut("11.1 µm · 287 K", 20, true), "11.1 um - 287 K");
     }
 
     #[test]

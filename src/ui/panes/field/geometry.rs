@@ -6,6 +6,9 @@ use ratatui::layout::Rect;
 
 use super::Placement;
 
+/// How much more one direction may be stretched than the other, to use the room.
+const STRETCH: f64 = 2.5;
+
 /// How a part of the map is spread over an area of the screen. A cell holds one or two dots, one
 /// above the other; a dot shows one place, or several of which one is taken.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -23,8 +26,8 @@ pub struct Geometry {
 }
 
 impl Geometry {
-    /// Spreads a map over an area, so that both directions are stretched alike within a factor of
-    /// two and, where there is room, by whole numbers. `zoom` halves what is shown as often, around
+    /// Spreads a map over an area, so that both directions are stretched about alike and, where there
+    /// is room, by whole numbers. `zoom` halves what is shown as often, around
     /// the cursor; what is shown moves on by half its size at a time, so that most moves of the
     /// cursor leave the picture as it is. `None` where there is nothing to show or no room.
     pub fn new(
@@ -133,8 +136,8 @@ fn spread(room: (usize, usize), extent: (usize, usize), dots: u16) -> (usize, us
         (size as usize).clamp(1, room)
     };
     (
-        fit(across.min(2.0 * down), extent.0, room.0),
-        fit(down.min(2.0 * across) / height, extent.1, room.1),
+        fit(across.min(STRETCH * down), extent.0, room.0),
+        fit(down.min(STRETCH * across) / height, extent.1, room.1),
     )
 }
 

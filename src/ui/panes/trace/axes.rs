@@ -42,7 +42,7 @@ fn draw_values(plot: &Plot, unit: &str, theme: &Theme, buffer: &mut Buffer) {
         }
     }
     // The unit stands above the values, where the line of wavelengths leaves its corner free.
-    let corner = Rect { y: plot.top.y, width: plot.left.width, ..labels };
+    let corner = Rect { y: plot.top.y, ..labels };
     if unit.width() <= usize::from(corner.width) {
         put_right(corner, unit, style, theme.ascii, buffer);
     }

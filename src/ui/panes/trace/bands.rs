@@ -9,43 +9,70 @@ use super::plot::Plot;
 use crate::ui::colour::{Theme, Tone};
 use crate::ui::widgets::put;
 
-/// Writes the names, the more important first, over the middle of what is on show of each band.
-/// A name that would touch another, or a curve, is left out.
+/// Writes the names, the more important first. In a line of their own they show how far each band
+/// reaches; otherwise a name stands between the curves where it finds room within its band. A name
+/// that finds none is left out.
 pub(super) fn draw(plot: &Plot, bands: &[BandName<'_>], theme: &Theme, buffer: &mut Buffer) {
-    let line = plot.bands;
-    let mut taken: Vec<(u16, u16)> = Vec::new();
     for band in bands {
         let (low, high) = (band.low.max(plot.x.0), band.high.min(plot.x.1));
         let (Some(from), Some(to)) = (plot.column_of(low), plot.column_of(high)) else { continue };
-        let width = band.label.width() as u16;
-        if from > to || width == 0 || width > line.width {
+        if from > to || band.label.is_empty() {
             continue;
         }
-        let middle = from + (to - from) / 2;
-        let start = middle.saturating_sub(width / 2).clamp(line.x, line.right() - width);
-        let end = start + width;
-        let touches = |(first, last): &(u16, u16)| start < *last + 1 && *first < end + 1;
-        if taken.iter().any(touches) || !is_free(Rect { x: start, width, ..line }, buffer) {
-            continue;
-        }
-        // In a line of their own the bands show how far they reach.
-        if plot.bands_alone && !taken.iter().any(|(first, last)| from < last + 1 && *first < to + 2)
-        {
-            draw_extent(Rect { x: from, width: to - from + 1, ..line }, theme, buffer);
-            taken.push((from.min(start), (to + 1).max(end)));
+        let extent = Rect { x: from, width: to - from + 1, ..plot.bands };
+        if plot.bands_alone {
+            draw_alone(band.label, extent, plot, theme, buffer);
         } else {
-            taken.push((start, end));
+            draw_between(band.label, extent, plot, theme, buffer);
         }
-        let place = Rect { x: start, width, ..line };
-        put(place, band.label, theme.style(Tone::Faint), theme.ascii, buffer);
     }
 }
 
+/// A name in the line for names, over the middle of its extent, wider than it if need be.
+fn draw_alone(label: &str, extent: Rect, plot: &Plot, theme: &Theme, buffer: &mut Buffer) {
+    let width = label.width() as u16;
+    if width > plot.bands.width {
+        return;
+    }
+    let middle = extent.x + extent.width / 2;
+    let latest = plot.bands.right() - width;
+    let start = middle.saturating_sub(width / 2).clamp(plot.bands.x, latest);
+    let name = Rect { x: start, width, ..plot.bands };
+    let whole = name.union(extent);
+    if is_free(whole, buffer) {
+        draw_extent(extent, theme, buffer);
+    } else if !is_free(name, buffer) {
+        return;
+    }
+    put(name, label, theme.style(Tone::Faint), theme.ascii, buffer);
+}
+
+/// A name on whichever row has room for it near the middle of its extent, from the top and the
+/// bottom inwards.
+fn draw_between(label: &str, extent: Rect, plot: &Plot, theme: &Theme, buffer: &mut Buffer) {
+    let width = label.width() as u16;
+    let Some(spare) = extent.width.checked_sub(width) else { return };
+    let inwards = (0..plot.area.height).map(|step| match step % 2 {
+        0 => plot.area.y + step / 2,
+        _ => plot.area.bottom() - 1 - step / 2,
+    });
+    for y in inwards {
+        for x in [spare / 2, spare / 4, spare - spare / 4, 0, spare] {
+            let name = Rect { x: extent.x + x, y, width, height: 1 };
+            if is_free(name, buffer) {
+                put(name, label, theme.style(Tone::Faint), theme.ascii, buffer);
+                return;
+            }
+        }
+    }
+}
+
+/// Whether nothing stands in a place nor touches it.
 fn is_free(place: Rect, buffer: &Buffer) -> bool {
-    place.columns().all(|cell| {
-        buffer
-            .cell((cell.x, cell.y))
-            .is_some_and(|cell| matches!(cell.symbol(), " " | "─" | "-" | "╶" | "╴"))
+    (place.x.saturating_sub(1)..=place.right()).all(|x| {
+        let Some(cell) = buffer.cell((x, place.y)) else { return true };
+        let beside = x < place.x || x >= place.right();
+        cell.symbol() == " " || (beside && matches!(cell.symbol(), "│" | "┤" | "|" | "+"))
     })
 }
 

@@ -12,9 +12,14 @@ use crate::ui::widgets::{Frame, cut, put, put_right};
 /// Draws the Trace: the curves between their axes, names of bands, and the channel in hand with
 /// its value in words at the right of the title.
 pub fn draw(view: &TraceView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer) {
-    let frame = Frame { name: "Trace", rest: &title(view), focused: view.focused };
+    let (title, words) = titles(view, area.width, theme.ascii);
+    let frame = Frame { name: "Trace", rest: &title, focused: view.focused };
     let Some(room) = frame.draw(theme, area, buffer) else { return };
-    draw_words(view, theme, Rect { height: 1, ..area }, buffer);
+    if !words.is_empty() {
+        let rule = Rect { height: 1, width: area.width.saturating_sub(1), ..area };
+        let accent = theme.style(Tone::Accent);
+        put_right(rule, &format!(" {words} "), accent, theme.ascii, buffer);
+    }
     let Some(plot) = Plot::new(view, room) else {
         let words = if view.empty.is_empty() { "no range to show" } else { view.empty };
         put(room, words, theme.style(Tone::Faint), theme.ascii, buffer);
@@ -40,27 +45,21 @@ pub fn wavenumber_at(view: &TraceView<'_>, area: Rect, column: u16, row: u16) ->
     Plot::new(view, room)?.wavenumber_at(column)
 }
 
-fn title(view: &TraceView<'_>) -> String {
-    match (view.title, view.quantity) {
+/// The title and the words for the channel in hand, as far as both fit: what is measured is left
+/// out first, as the unit says it too; then words are cut.
+fn titles(view: &TraceView<'_>, width: u16, ascii: bool) -> (String, String) {
+    let room = usize::from(width).saturating_sub(" Trace ".len() + 4);
+    let words = view.channel.map_or("", |channel| channel.words);
+    let whole = match (view.title, view.quantity) {
         (title, "") => title.to_string(),
         ("", quantity) => quantity.to_string(),
         (title, quantity) => format!("{title}: {quantity}"),
-    }
-}
-
-/// The channel in hand in words, at the right end of the title's rule.
-fn draw_words(view: &TraceView<'_>, theme: &Theme, rule: Rect, buffer: &mut Buffer) {
-    let Some(channel) = &view.channel else { return };
-    let taken = " Trace ".len() + title(view).width() + 4;
-    let most = usize::from(rule.width).saturating_sub(4);
-    // Where both do not fit, the value is worth more than the title, but the name stays.
-    let room = most.saturating_sub(taken).max(most.saturating_sub(12));
-    if room < 8 || channel.words.is_empty() {
-        return;
-    }
-    let words = format!(" {} ", cut(channel.words, room - 2, theme.ascii));
-    let line = Rect { width: rule.width.saturating_sub(2), ..rule };
-    put_right(line, &words, theme.style(Tone::Accent), theme.ascii, buffer);
+    };
+    let gap = if words.is_empty() { 0 } else { 4 };
+    let title = if whole.width() + gap + words.width() <= room { &whole } else { view.title };
+    let words = cut(words, room.saturating_sub(gap), ascii);
+    let title = cut(title, room.saturating_sub(gap + words.width()), ascii);
+    (title, words)
 }
 
 /// Says why nothing, or not everything, is there.
@@ -129,7 +128,7 @@ mod tests {
             screen.lines(),
             [
                 "- Trace 12, 3: BT ----------------------------",
-                "   K     15   14    13    12      11       um",
+                "  K      15   14    13    12      11       um",
                 "300+                    *********************",
                 "   |",
                 "   |",
@@ -193,6 +192,27 @@ mod tests {
         let area = screen.area();
         let there = wavenumber_at(&view, area, rule as u16, 5).unwrap();
         assert!((there - 900.0).abs() < 400.0 / 60.0, "{there}");
+    }
+
+    #[test]
+    fn the_quantity_makes_room_for_the_value_and_then_the_title_does() {
+        let mut view = view(&[]);
+        view.title = "line 12, position 3";
+        view.quantity = "brightness temperature";
+        let words = "900.00 cm-1 · 290.00 K";
+        view.channel = Some(ChannelMark { wavenumber: 900.0, words });
+        for (width, line) in [
+            (
+                80,
+                "─ Trace line 12, position 3: brightness temperature ─── 900.00 cm-1 · 290.00 K ─",
+            ),
+            (60, "─ Trace line 12, position 3 ──────── 900.00 cm-1 · 290.00 K ─"),
+            (46, "─ Trace line 12, … ── 900.00 cm-1 · 290.00 K ─"),
+        ] {
+            let mut screen = Screen::new(width, 9);
+            draw(&view, &THEME, screen.area(), &mut screen.buffer);
+            assert_eq!(screen.lines()[0], line);
+        }
     }
 
     #[test]
