@@ -1,23 +1,31 @@
 //! `radsieve export`: masks and lists from the ledgers.
 
+use std::io::Write;
 use std::path::{Path, PathBuf};
 
 use anyhow::Context;
 use serde_json::json;
 
+use super::inputs::{Inputs, Reading, reader_program};
 use super::{Exit, surroundings};
 use crate::export::{Exported, Exporter, Form, Provenance};
 use crate::flags::Campaign;
 use crate::granule::Granule;
-use crate::netcdf_files::ReadLimits;
 use crate::system::clean_text;
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
+#[command(
+    after_help = "Equal file names from different folders never overwrite each other: the second \
+    gets a short hash in its name.\n\nA mask is a screening aid for retrieval runs, not a warning \
+    service. RADSIEVE_PERSON names who exports; RADSIEVE_NOW (as in 2026-01-31T12:00:00Z) stops the \
+    clock, so that the same decisions give the same bytes."
+)]
 pub struct Arguments {
-    /// Granules; equal names from different folders never overwrite each other's masks.
-    #[arg(required = true, value_name = "FILES")]
-    files: Vec<PathBuf>,
+    #[command(flatten)]
+    inputs: Inputs,
+    #[command(flatten)]
+    reading: Reading,
     /// The campaign folder with the ledgers; it is only read.
     #[arg(long, value_name = "DIR", default_value = surroundings::DEFAULT_CAMPAIGN)]
     campaign: PathBuf,
@@ -51,33 +59,35 @@ impl From<Format> for Form {
 
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    let files = arguments.inputs.files()?;
+    let now = surroundings::now()?;
     let campaign = Campaign::open(&arguments.campaign)?;
     for problem in &campaign.settings().problems {
         eprintln!("radsieve: {}", clean_text(problem));
     }
-    let program = surroundings::reader_program()?;
+    let program = reader_program()?;
     let provenance = Provenance {
         program: env!("CARGO_PKG_VERSION").to_owned(),
-        now: surroundings::now()?,
+        now,
         person: surroundings::person(),
         campaign: campaign.settings().title.clone(),
         ledger_problems: Vec::new(),
     };
-    let files = arguments.files;
     std::fs::create_dir_all(&arguments.out)
         .with_context(|| format!("cannot make the folder {}", arguments.out.display()))?;
     let form = arguments.format.into();
+    let limits = arguments.reading.limits();
     let mut exporter = Exporter::new(&campaign, &program, provenance, form, &arguments.out, &files);
     let mut results = Vec::new();
     for file in &files {
-        let granule = Granule::open(&program, file, &ReadLimits::default());
+        let granule = Granule::open(&program, file, &limits);
         let result = granule.map_err(Into::into).and_then(|granule| exporter.export(&granule));
         let result = result.map_err(|error: crate::export::NotExported| error.to_string());
-        tell(file, &result, arguments.json);
+        tell(file, &result, arguments.json)?;
         results.push((file.as_path(), result));
     }
     if arguments.json {
-        println!("{}", summary(&results));
+        writeln!(std::io::stdout(), "{}", summary(&results))?;
     }
     Ok(exit(results.iter().filter(|(_, result)| result.is_err()).count(), results.len()))
 }
@@ -91,7 +101,7 @@ fn exit(failed: usize, all: usize) -> Exit {
 }
 
 /// Messages on standard error; the file's name on standard output, for scripts.
-fn tell(file: &Path, result: &Result<Exported, String>, json: bool) {
+fn tell(file: &Path, result: &Result<Exported, String>, json: bool) -> std::io::Result<()> {
     let file = clean_text(&file.display().to_string());
     match result {
         Ok(exported) => {
@@ -99,13 +109,14 @@ fn tell(file: &Path, result: &Result<Exported, String>, json: bool) {
                 eprintln!("radsieve: {file}: {}", clean_text(message));
             }
             if !json {
-                println!("{}", exported.path.display());
+                writeln!(std::io::stdout(), "{}", exported.path.display())?;
             }
         }
         // Messages of granules begin with the path already.
         Err(error) if error.starts_with(&file) => eprintln!("radsieve: {}", clean_text(error)),
         Err(error) => eprintln!("radsieve: {file}: {}", clean_text(error)),
     }
+    Ok(())
 }
 
 fn summary(results: &[(&Path, Result<Exported, String>)]) -> serde_json::Value {

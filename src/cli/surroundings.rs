@@ -1,13 +1,11 @@
-//! What a command takes from its surroundings: who, where, when, and which program reads files.
+//! What a command takes from its surroundings: who, where, when.
 
 use std::env;
-use std::path::PathBuf;
 
 use jiff::Timestamp;
 
 use super::exit::UsageError;
 use crate::flags::Author;
-use crate::netcdf_files::ReaderProgram;
 
 /// The campaign folder where none is named.
 pub const DEFAULT_CAMPAIGN: &str = "radsieve-campaign";
@@ -42,14 +40,4 @@ pub fn now() -> Result<Timestamp, UsageError> {
             UsageError(format!("{NOW} is {text:?}, which is no time like 2026-01-31T12:00:00Z"))
         }),
     }
-}
-
-/// This program, which starts itself as the reader of each file.
-///
-/// # Errors
-/// The system does not tell where the program lies.
-pub fn reader_program() -> anyhow::Result<ReaderProgram> {
-    let path: PathBuf = env::current_exe()
-        .map_err(|error| anyhow::anyhow!("cannot find this program to read files with: {error}"))?;
-    Ok(ReaderProgram::new(path))
 }
