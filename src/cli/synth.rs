@@ -1,12 +1,120 @@
-//! `radsieve synth`.
+//! `radsieve synth`: synthetic granules with their truth.
+
+use std::io::IsTerminal;
+use std::path::PathBuf;
+
+use indicatif::{ProgressBar, ProgressStyle};
 
 use super::Exit;
+use super::exit::UsageError;
+use crate::synth::{DEFAULT_SEED, Recipe, SceneName, Shape, make_granule};
+use crate::system::Cancel;
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
-pub struct Arguments {}
+#[command(after_help = scenes_and_shapes())]
+pub struct Arguments {
+    /// Folder for the granules; made if it is not there.
+    #[arg(long, value_name = "DIR")]
+    out: PathBuf,
+    /// What they show: a scene's name, or all.
+    #[arg(long, value_name = "NAME", default_value = "all")]
+    scene: String,
+    /// How large they are: sample, interferometer, grating, or numbers such as 20x30x9.
+    #[arg(long, value_name = "SHAPE", default_value = "sample")]
+    shape: String,
+    /// What their random numbers grow from; the same seed gives the same granule.
+    #[arg(long, value_name = "NUMBER", default_value_t = DEFAULT_SEED)]
+    seed: u64,
+    /// Replace files that are there already.
+    #[arg(long)]
+    force: bool,
+}
+
+fn scenes_and_shapes() -> String {
+    let mut text = String::from("Scenes:\n");
+    for scene in SceneName::ALL {
+        text += &format!("  {:15} {}: {}\n", scene.label(), scene.place(), scene.summary());
+    }
+    text += "\nShapes:\n  \
+        sample          small (under 4 MB), with a layout of the scene's own\n  \
+        interferometer  45x30x9 footprints, 717 + 869 + 637 channels\n  \
+        grating         135x90 footprints, 2378 channels\n  \
+        20x30           scan lines x positions of the grating\n  \
+        20x30x9         scan lines x positions x 1, 4 or 9 detectors of the interferometer\n\n\
+        Instrument and places are imaginary. Every file says that it is synthetic: no data for science.";
+    text
+}
+
+/// What the arguments mean: recipes and where they go.
+fn plan(arguments: &Arguments) -> anyhow::Result<Vec<(Recipe, PathBuf)>> {
+    let shape =
+        Shape::parse(&arguments.shape).map_err(|error| UsageError(format!("--shape: {error}")))?;
+    let scenes: Vec<SceneName> = SceneName::ALL
+        .into_iter()
+        .filter(|scene| arguments.scene == "all" || arguments.scene == scene.label())
+        .collect();
+    if scenes.is_empty() {
+        let names: Vec<&str> = SceneName::ALL.iter().map(|scene| scene.label()).collect();
+        let names = names.join(", ");
+        let message = format!("--scene: {:?} is no scene: write all, {names}", arguments.scene);
+        return Err(UsageError(message).into());
+    }
+    let planned: Vec<(Recipe, PathBuf)> = scenes
+        .into_iter()
+        .map(|scene| Recipe { scene, shape, seed: arguments.seed })
+        .map(|recipe| (recipe, arguments.out.join(recipe.file_name())))
+        .collect();
+    if !arguments.force
+        && let Some((_, there)) = planned.iter().find(|(_, path)| path.exists())
+    {
+        let there = there.display();
+        anyhow::bail!("{there} is there already; --force replaces it (nothing was written)");
+    }
+    Ok(planned)
+}
 
 /// Runs the command.
-pub fn run(_arguments: Arguments) -> anyhow::Result<Exit> {
-    anyhow::bail!("synth is not part of this version yet")
+pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    let planned = plan(&arguments)?;
+    std::fs::create_dir_all(&arguments.out).map_err(|error| {
+        anyhow::anyhow!("cannot make the folder {}: {error}", arguments.out.display())
+    })?;
+    let cancel = Cancel::new();
+    for (recipe, path) in planned {
+        let name = recipe.file_name();
+        let progress = Progress::new(&name);
+        make_granule(recipe, &path, &cancel, &mut |done, all| progress.at(done, all))?;
+        progress.end();
+        println!("{}", path.display());
+    }
+    Ok(Exit::Done)
+}
+
+/// A bar on a terminal; elsewhere a plain line at the start.
+struct Progress(ProgressBar);
+
+impl Progress {
+    fn new(name: &str) -> Progress {
+        if std::io::stderr().is_terminal() {
+            let bar = ProgressBar::new(0);
+            if let Ok(style) = ProgressStyle::with_template("{msg} {bar:30} {pos}/{len} scan lines")
+            {
+                bar.set_style(style);
+            }
+            bar.set_message(name.to_owned());
+            return Progress(bar);
+        }
+        eprintln!("making {name}");
+        Progress(ProgressBar::hidden())
+    }
+
+    fn at(&self, done: usize, all: usize) {
+        self.0.set_length(all as u64);
+        self.0.set_position(done as u64);
+    }
+
+    fn end(&self) {
+        self.0.finish_and_clear();
+    }
 }

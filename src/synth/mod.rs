@@ -3,3 +3,23 @@
 //! Uses: `system`, `units`, `spectral`, `netcdf_files`, `forward`.
 //!
 //! **Never** is used by what it tests.
+
+mod defects;
+mod field;
+mod granule_file;
+mod instrument;
+mod noise;
+mod recipe;
+mod scene;
+mod scenes;
+mod shape;
+mod spectra;
+mod storage;
+mod sun;
+mod swath;
+mod truth;
+
+pub use granule_file::{ContentError, SynthError, make_granule};
+pub use recipe::{DEFAULT_SEED, Recipe};
+pub use scenes::SceneName;
+pub use shape::{Shape, ShapeError};

@@ -1,0 +1,108 @@
+//! The scenes, each an imaginary place.
+
+mod ketter_desert;
+mod norrik_plateau;
+mod sea_of_lowen;
+mod strait_of_pell;
+
+use super::defects::Defect;
+use super::instrument::Instrument;
+use super::scene::{Scene, Setting};
+
+/// A scene by name.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum SceneName {
+    /// Warm sea by night: broken cloud, cirrus, a deep convective core.
+    SeaOfLowen,
+    /// Desert by day: quartz sand, a dust plume, thin cirrus.
+    KetterDesert,
+    /// Polar night over snow: inversion, low cloud, a faulty instrument.
+    NorrikPlateau,
+    /// Two coasts and the sea between them by day: stratocumulus, a front.
+    StraitOfPell,
+}
+
+impl SceneName {
+    /// Every scene.
+    pub const ALL: [SceneName; 4] = [
+        SceneName::SeaOfLowen,
+        SceneName::KetterDesert,
+        SceneName::NorrikPlateau,
+        SceneName::StraitOfPell,
+    ];
+
+    /// Name on the command line.
+    pub fn label(self) -> &'static str {
+        match self {
+            SceneName::SeaOfLowen => "sea-of-lowen",
+            SceneName::KetterDesert => "ketter-desert",
+            SceneName::NorrikPlateau => "norrik-plateau",
+            SceneName::StraitOfPell => "strait-of-pell",
+        }
+    }
+
+    /// Name of the place.
+    pub fn place(self) -> &'static str {
+        match self {
+            SceneName::SeaOfLowen => "Sea of Lowen",
+            SceneName::KetterDesert => "Ketter Desert",
+            SceneName::NorrikPlateau => "Norrik Plateau",
+            SceneName::StraitOfPell => "Strait of Pell",
+        }
+    }
+
+    /// One line about it.
+    pub fn summary(self) -> &'static str {
+        match self {
+            SceneName::SeaOfLowen => {
+                "warm sea by night with broken cloud, cirrus and a deep convective core"
+            }
+            SceneName::KetterDesert => "desert by day with a dust plume and thin cirrus",
+            SceneName::NorrikPlateau => {
+                "snow in the polar night with an inversion, low cloud and instrument defects"
+            }
+            SceneName::StraitOfPell => {
+                "two coasts and a strait by day with stratocumulus and a front"
+            }
+        }
+    }
+
+    /// When and where.
+    pub fn setting(self) -> Setting {
+        match self {
+            SceneName::SeaOfLowen => sea_of_lowen::SETTING,
+            SceneName::KetterDesert => ketter_desert::SETTING,
+            SceneName::NorrikPlateau => norrik_plateau::SETTING,
+            SceneName::StraitOfPell => strait_of_pell::SETTING,
+        }
+    }
+
+    /// The scene drawn from a seed.
+    pub fn scene(self, seed: u64) -> Box<dyn Scene> {
+        match self {
+            SceneName::SeaOfLowen => Box::new(sea_of_lowen::SeaOfLowen::new(seed)),
+            SceneName::KetterDesert => Box::new(ketter_desert::KetterDesert::new(seed)),
+            SceneName::NorrikPlateau => Box::new(norrik_plateau::NorrikPlateau::new(seed)),
+            SceneName::StraitOfPell => Box::new(strait_of_pell::StraitOfPell::new(seed)),
+        }
+    }
+
+    /// Instrument, scan lines and positions of the scene's sample granule.
+    pub fn sample(self) -> (Instrument, usize, usize) {
+        match self {
+            SceneName::SeaOfLowen => (Instrument::reduced_interferometer(), 13, 14),
+            SceneName::KetterDesert => (Instrument::desert_grating(), 40, 40),
+            SceneName::NorrikPlateau => (Instrument::fine_interferometer(), 21, 20),
+            SceneName::StraitOfPell => (Instrument::strait_grating(), 40, 42),
+        }
+    }
+
+    /// What is wrong with the instrument.
+    pub fn defects(self) -> &'static [Defect] {
+        match self {
+            SceneName::NorrikPlateau => norrik_plateau::DEFECTS,
+            SceneName::KetterDesert => ketter_desert::DEFECTS,
+            SceneName::SeaOfLowen | SceneName::StraitOfPell => &[],
+        }
+    }
+}
