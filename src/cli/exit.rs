@@ -13,6 +13,8 @@ pub enum Exit {
     SomeFailed,
     /// Nothing could be done: an input or output error.
     Failed,
+    /// Ended by a signal: 128 and its number.
+    Signal(u8),
 }
 
 impl From<Exit> for ExitCode {
@@ -22,6 +24,7 @@ impl From<Exit> for ExitCode {
             Exit::Usage => 2,
             Exit::SomeFailed => 3,
             Exit::Failed => 4,
+            Exit::Signal(code) => code,
         })
     }
 }

@@ -1,12 +1,106 @@
-//! `radsieve review`.
+//! `radsieve review`: the terminal review.
+
+use std::path::PathBuf;
 
 use super::Exit;
+use super::inputs::{Inputs, Reading};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
-pub struct Arguments {}
+pub struct Arguments {
+    #[command(flatten)]
+    inputs: Inputs,
+    /// The campaign folder: settings, ledgers, exports; made where there is none
+    #[arg(long, value_name = "DIR", default_value = "radsieve-campaign")]
+    campaign: PathBuf,
+    /// The layer to begin with, such as bt(900) or bt(900)-bt(831)
+    #[arg(long, value_name = "EXPR")]
+    layer: Option<String>,
+    /// Colours: auto, always, never, 16, 256 or true
+    #[arg(long, value_name = "WHEN", default_value = "auto")]
+    color: String,
+    /// Letters and ASCII signs only
+    #[arg(long)]
+    ascii: bool,
+    /// Send as little as possible: no more than 256 colours, no synchronised frames
+    #[arg(long)]
+    low_bandwidth: bool,
+    #[command(flatten)]
+    reading: Reading,
+}
 
 /// Runs the command.
+#[cfg(not(feature = "terminal"))]
 pub fn run(_arguments: Arguments) -> anyhow::Result<Exit> {
-    anyhow::bail!("review is not part of this version yet")
+    let words = "this build has no terminal review; export, tabulate and describe work without it";
+    Err(super::exit::UsageError(words.to_owned()).into())
+}
+
+/// Runs the command.
+#[cfg(feature = "terminal")]
+pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    on_screen::run(arguments)
+}
+
+#[cfg(feature = "terminal")]
+mod on_screen {
+    use std::env;
+    use std::io::IsTerminal;
+    use std::sync::Arc;
+
+    use super::Arguments;
+    use crate::cli::exit::{Exit, UsageError};
+    use crate::cli::{inputs, surroundings};
+    use crate::flags::Campaign;
+    use crate::layers::Expression;
+    use crate::tray::Tray;
+    use crate::ui::colour::{Background, ColourDepth, ColourRequest, ColourSettings, Theme};
+    use crate::ui::{self, App, Outside};
+
+    /// What to use where the screen can't be shown.
+    const NO_TERMINAL: &str = "review needs a terminal that can move its cursor (TERM is unset or \
+                               dumb, or the output goes elsewhere); describe, tabulate, spectrum \
+                               and export work without one";
+
+    pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+        let request: ColourRequest = arguments.color.parse().map_err(UsageError)?;
+        if let Some(layer) = &arguments.layer {
+            Expression::parse(layer).map_err(|error| UsageError(error.to_string()))?;
+        }
+        if !ui::is_usable(env::var("TERM").ok().as_deref()) {
+            return Err(UsageError(NO_TERMINAL.to_owned()).into());
+        }
+        let theme = theme(request, &arguments);
+        let files = arguments.inputs.files()?;
+        let campaign = Campaign::open_or_create(&arguments.campaign)?;
+        surroundings::now()?;
+        let outside = Outside {
+            reader: inputs::reader_program()?,
+            limits: arguments.reading.limits(),
+            campaign,
+            author: surroundings::author(),
+            program: env!("CARGO_PKG_VERSION").to_owned(),
+            // The form of RADSIEVE_NOW was checked above.
+            clock: Arc::new(|| surroundings::now().unwrap_or_else(|_| jiff::Timestamp::now())),
+            first_layer: arguments.layer,
+        };
+        let mut app = App::new(outside, theme, Tray::new(files));
+        app.synchronised = !arguments.low_bandwidth;
+        let ended = ui::run(app)?;
+        if let Some(unwritten) = &ended.unwritten {
+            eprintln!("radsieve: {unwritten}");
+        }
+        Ok(if ended.code == 0 { Exit::Done } else { Exit::Signal(ended.code) })
+    }
+
+    fn theme(request: ColourRequest, arguments: &Arguments) -> Theme {
+        let is_terminal = std::io::stdout().is_terminal();
+        let settings = ColourSettings::gather(request, is_terminal, |name| env::var(name).ok());
+        let depth = settings.depth();
+        Theme {
+            depth: if arguments.low_bandwidth { depth.min(ColourDepth::Indexed) } else { depth },
+            ascii: arguments.ascii,
+            background: Background::from_colorfgbg(env::var("COLORFGBG").ok().as_deref()),
+        }
+    }
 }

@@ -3,3 +3,13 @@
 //! Uses: `system`, `units`, `spectral`, `netcdf_files`, `granule`, `layers`, `flags`, `export`.
 //!
 //! **Never** draws or prints.
+
+mod record;
+#[allow(clippy::module_inception)] // The room is named after the thing.
+mod review;
+mod spectrum;
+mod suggestions;
+
+pub use record::{Record, Refusal};
+pub use review::Review;
+pub use spectrum::{BandSpectrum, Spectrum};

@@ -1,9 +1,9 @@
 //! Everything that can happen to the screen, in one list.
 
+use super::jobs::Answer;
 use super::key::Key;
 
 /// One event for `update`.
-#[derive(Debug)]
 pub enum Event {
     /// The person did something.
     Input(Input),
@@ -11,6 +11,8 @@ pub enum Event {
     Resized,
     /// The screen was given back and taken again: everything is drawn anew.
     Resumed,
+    /// A job answered.
+    Answer(Answer),
     /// The ledger's writer may have reported.
     LedgerMoved,
     /// Stop to the shell, as Ctrl-Z asks for.

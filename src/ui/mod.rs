@@ -7,17 +7,43 @@
 //!
 //! **Never** computes physics.
 
+mod answers;
+pub mod app;
+pub mod bench;
+mod channels;
 pub mod colour;
 pub mod command;
+mod deciding;
+mod draw;
 pub mod event;
-pub mod input;
+mod input;
+pub mod jobs;
 pub mod key;
 mod keyboard;
 pub mod keys;
 #[cfg(test)]
 mod keys_document;
-pub mod line;
+mod line;
+mod looking;
+mod moving;
+mod overlay;
 pub mod panes;
+mod place;
+mod prompts;
+mod run;
+mod runner;
+mod shown_layer;
 mod signals;
-pub mod terminal;
+mod spectrum_window;
+mod terminal;
+mod turning;
+mod update;
+mod views;
 pub mod widgets;
+mod work;
+
+pub use app::{App, Outside};
+pub use draw::draw;
+pub use run::{Ended, run};
+pub use terminal::is_usable;
+pub use update::update;

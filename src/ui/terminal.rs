@@ -11,6 +11,7 @@ use crossterm::terminal::{
 };
 use crossterm::{cursor, execute, queue, terminal};
 use ratatui::backend::CrosstermBackend;
+use ratatui::layout::{Rect, Size};
 use ratatui::{Frame, Terminal};
 
 type Writer = BufWriter<Stdout>;
@@ -48,11 +49,32 @@ impl Screen {
     pub fn take(mouse: bool, synchronised: bool) -> io::Result<Screen> {
         install_panic_hook();
         TAKEN.store(true, Ordering::SeqCst);
-        let screen = start(mouse, synchronised);
-        if screen.is_err() {
-            give_back();
+        match start(mouse) {
+            Ok(terminal) => Ok(Screen { terminal, synchronised }),
+            Err(error) => {
+                give_back();
+                Err(error)
+            }
         }
-        screen
+    }
+
+    /// Takes the terminal over once more, after the shell or something else had it in between.
+    ///
+    /// # Errors
+    /// The terminal has gone away.
+    pub fn take_again(&mut self, mouse: bool) -> io::Result<()> {
+        give_back();
+        TAKEN.store(true, Ordering::SeqCst);
+        self.terminal = start(mouse)?;
+        Ok(())
+    }
+
+    /// The size of the screen.
+    ///
+    /// # Errors
+    /// The terminal has gone away.
+    pub fn size(&self) -> io::Result<Size> {
+        self.terminal.size()
     }
 
     /// Draws what changed since the last time.
@@ -77,7 +99,7 @@ impl Screen {
     pub fn forget(&mut self) -> io::Result<()> {
         // Resizing to the present size blanks the screen without asking the terminal anything.
         let size = self.terminal.size()?;
-        self.terminal.resize(ratatui::layout::Rect::new(0, 0, size.width, size.height))
+        self.terminal.resize(Rect::new(0, 0, size.width, size.height))
     }
 
     /// Switches mouse reports on or off.
@@ -95,7 +117,7 @@ impl Drop for Screen {
     }
 }
 
-fn start(mouse: bool, synchronised: bool) -> io::Result<Screen> {
+fn start(mouse: bool) -> io::Result<Terminal<CrosstermBackend<Writer>>> {
     terminal::enable_raw_mode()?;
     let mut writer = BufWriter::with_capacity(64 * 1024, io::stdout());
     queue!(writer, terminal::EnterAlternateScreen, DisableLineWrap, Clear(ClearType::All))?;
@@ -104,8 +126,7 @@ fn start(mouse: bool, synchronised: bool) -> io::Result<Screen> {
         queue!(writer, Print(MOUSE_ON))?;
     }
     writer.flush()?;
-    let terminal = Terminal::new(CrosstermBackend::new(writer))?;
-    Ok(Screen { terminal, synchronised })
+    Terminal::new(CrosstermBackend::new(writer))
 }
 
 /// Gives the terminal back, from any thread. Errors are of no use here: the terminal may be gone.

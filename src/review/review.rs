@@ -1,0 +1,99 @@
+//! A granule on the table, to look at: layers and spectra while it is still being read.
+
+use std::path::Path;
+use std::sync::{Arc, OnceLock};
+
+use crate::flags::GranuleIdentity;
+use crate::granule::{Cube, Granule, GranuleError};
+use crate::layers::{Expression, GranuleNames, Layer, Mistake, Neighbours, evaluate_all};
+use crate::netcdf_files::{ReadLimits, ReaderProgram};
+
+/// A granule on the table. Many threads may look at it at once.
+#[derive(Debug)]
+pub struct Review {
+    granule: Granule,
+    cube: Arc<Cube>,
+    neighbours: OnceLock<Neighbours>,
+}
+
+impl Review {
+    /// Opens a granule. No spectra are read.
+    ///
+    /// # Errors
+    /// The file can't be read within the limits, or holds no spectra.
+    pub fn open(
+        program: &ReaderProgram,
+        path: &Path,
+        limits: &ReadLimits,
+    ) -> Result<Review, GranuleError> {
+        Ok(Review::of(Granule::open(program, path, limits)?))
+    }
+
+    /// Puts an open granule on the table.
+    pub fn of(granule: Granule) -> Review {
+        let cube = granule.cube();
+        Review { granule, cube, neighbours: OnceLock::new() }
+    }
+
+    /// The granule.
+    pub fn granule(&self) -> &Granule {
+        &self.granule
+    }
+
+    /// What has been read of it.
+    pub fn cube(&self) -> &Cube {
+        &self.cube
+    }
+
+    /// Its names for layer expressions.
+    pub fn names(&self) -> GranuleNames<'_> {
+        GranuleNames::new(&self.granule, &self.cube).keeping_neighbours(&self.neighbours)
+    }
+
+    /// Evaluates an expression over what has been read so far.
+    ///
+    /// # Errors
+    /// In one line: the text is no expression, or the granule lacks something that it asks for.
+    pub fn layer(&self, text: &str) -> Result<Layer, String> {
+        self.layers(&[text]).swap_remove(0)
+    }
+
+    /// The same for several expressions, which share what they have in common.
+    pub fn layers(&self, texts: &[&str]) -> Vec<Result<Layer, String>> {
+        let parsed: Vec<Result<Expression, String>> = texts
+            .iter()
+            .map(|text| {
+                let parsed = Expression::parse(text);
+                parsed.map_err(|error| in_one_line(error.text(), error.mistake()))
+            })
+            .collect();
+        let good: Vec<&Expression> = parsed.iter().filter_map(|one| one.as_ref().ok()).collect();
+        let layers = evaluate_all(&good, &self.names()).into_iter();
+        let mut layers =
+            layers.map(|one| one.map_err(|error| in_one_line(error.text(), error.mistake())));
+        let missing = || Err("no layer came back".to_owned());
+        parsed
+            .into_iter()
+            .map(|one| one.and_then(|_| layers.next().unwrap_or_else(missing)))
+            .collect()
+    }
+
+    /// Names the granule by its content, as ledgers do. The first call reads the whole file.
+    ///
+    /// # Errors
+    /// The file can't be read, or is no longer the one that was opened.
+    pub fn identify(&self) -> Result<GranuleIdentity, GranuleError> {
+        let content = self.granule.hash()?;
+        let grid = self.granule.footprints();
+        Ok(GranuleIdentity {
+            hash: content.hash.clone(),
+            size: content.size,
+            name: self.granule.name(),
+            footprints: grid.names().iter().cloned().zip(grid.lengths().iter().copied()).collect(),
+        })
+    }
+}
+
+fn in_one_line(text: &str, mistake: &Mistake) -> String {
+    format!("{}: {}", crate::system::clean_text(text), mistake.in_one_line())
+}

@@ -1,0 +1,91 @@
+//! One granule of the Tray.
+
+use std::path::{Path, PathBuf};
+
+use crate::flags::{Counts, GranuleState};
+use crate::system::clean_text;
+
+/// How far a granule's review has come, as its ledgers say.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Standing {
+    /// The state.
+    pub state: GranuleState,
+    /// How many footprints are in which state, where their number is known.
+    pub counts: Option<Counts>,
+}
+
+/// One granule of the Tray.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Entry {
+    /// The file.
+    pub path: PathBuf,
+    /// Its name for the screen: cleaned, with so much of its folder as tells it from the others.
+    pub name: String,
+    /// What its ledgers say, once that is known.
+    pub standing: Option<Standing>,
+    /// Why it can't be used, where that has turned out.
+    pub error: Option<String>,
+}
+
+impl Entry {
+    /// Whether it is known to be signed off.
+    pub fn is_signed_off(&self) -> bool {
+        self.standing.as_ref().is_some_and(|standing| standing.state == GranuleState::SignedOff)
+    }
+}
+
+/// A name for each path: the file's own, or as many folders before it as it takes for no two to
+/// be the same. Equal paths keep equal names.
+pub fn names(paths: &[PathBuf]) -> Vec<String> {
+    let most = paths.iter().map(|path| path.components().count()).max().unwrap_or(0);
+    let mut names: Vec<String> = paths.iter().map(|path| tail(path, 1)).collect();
+    for parts in 2..=most {
+        let mut sorted = names.clone();
+        sorted.sort();
+        let doubled = |name: &String| {
+            let first = sorted.partition_point(|other| other < name);
+            sorted.get(first + 1).is_some_and(|next| next == name)
+        };
+        let again: Vec<bool> = names.iter().map(doubled).collect();
+        if !again.contains(&true) {
+            break;
+        }
+        for ((name, path), _) in names.iter_mut().zip(paths).zip(again).filter(|(_, again)| *again)
+        {
+            *name = tail(path, parts);
+        }
+    }
+    names
+}
+
+fn tail(path: &Path, parts: usize) -> String {
+    let components: Vec<_> = path.components().collect();
+    let start = components.len().saturating_sub(parts);
+    let tail: PathBuf = components.iter().skip(start).collect();
+    clean_text(&tail.to_string_lossy())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn names_of(paths: &[&str]) -> Vec<String> {
+        names(&paths.iter().map(PathBuf::from).collect::<Vec<_>>())
+    }
+
+    #[test]
+    fn names_are_as_long_as_it_takes() {
+        assert_eq!(names_of(&["a/x.nc", "a/y.nc"]), ["x.nc", "y.nc"]);
+        assert_eq!(names_of(&["a/x.nc", "b/x.nc", "b/y.nc"]), ["a/x.nc", "b/x.nc", "y.nc"]);
+        assert_eq!(
+            names_of(&["1/a/x.nc", "2/a/x.nc", "3/b/x.nc"]),
+            ["1/a/x.nc", "2/a/x.nc", "b/x.nc"]
+        );
+        assert_eq!(names_of(&["x.nc", "x.nc"]), ["x.nc", "x.nc"]);
+    }
+
+    #[test]
+    fn control_characters_do_not_reach_the_screen() {
+        assert!(!names_of(&["a\u{1b}[2Jb.nc"])[0].contains('\u{1b}'));
+    }
+}

@@ -1,0 +1,115 @@
+//! The granules in hand, in the order in which they were named.
+
+use std::path::PathBuf;
+
+use super::entry::{Entry, Standing, names};
+
+/// The granules in hand.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct Tray {
+    entries: Vec<Entry>,
+}
+
+impl Tray {
+    /// A Tray of these files, in this order.
+    pub fn new(paths: Vec<PathBuf>) -> Tray {
+        let names = names(&paths);
+        let entry = |(path, name)| Entry { path, name, standing: None, error: None };
+        Tray { entries: paths.into_iter().zip(names).map(entry).collect() }
+    }
+
+    /// All entries.
+    pub fn entries(&self) -> &[Entry] {
+        &self.entries
+    }
+
+    /// How many granules there are.
+    pub fn len(&self) -> usize {
+        self.entries.len()
+    }
+
+    /// Whether there is none.
+    pub fn is_empty(&self) -> bool {
+        self.entries.is_empty()
+    }
+
+    /// One entry.
+    pub fn entry(&self, number: usize) -> Option<&Entry> {
+        self.entries.get(number)
+    }
+
+    /// Takes down what a granule's ledgers say.
+    pub fn set_standing(&mut self, number: usize, standing: Standing) {
+        if let Some(entry) = self.entries.get_mut(number) {
+            entry.standing = Some(standing);
+        }
+    }
+
+    /// Takes down why a granule can't be used, or that it can after all.
+    pub fn set_error(&mut self, number: usize, error: Option<String>) {
+        if let Some(entry) = self.entries.get_mut(number) {
+            entry.error = error;
+        }
+    }
+
+    /// The next entry after `number` (from the beginning where there is none) that can be used, as
+    /// far as is known.
+    pub fn next(&self, number: Option<usize>) -> Option<usize> {
+        let start = number.map_or(0, |number| number + 1);
+        (start..self.len()).find(|next| self.is_usable(*next))
+    }
+
+    /// The next entry before `number` that can be used, as far as is known.
+    pub fn previous(&self, number: usize) -> Option<usize> {
+        (0..number.min(self.len())).rev().find(|next| self.is_usable(*next))
+    }
+
+    /// The next entry after `number` that can be used and is not known to be signed off; behind
+    /// the last one it goes on from the beginning.
+    pub fn next_unsigned(&self, number: Option<usize>) -> Option<usize> {
+        let start = number.map_or(0, |number| number + 1);
+        let round = (start..self.len()).chain(0..start.min(self.len()));
+        round
+            .filter(|next| Some(*next) != number)
+            .find(|next| self.is_usable(*next) && !self.entries[*next].is_signed_off())
+    }
+
+    fn is_usable(&self, number: usize) -> bool {
+        self.entries.get(number).is_some_and(|entry| entry.error.is_none())
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::flags::GranuleState;
+
+    fn tray() -> Tray {
+        let mut tray = Tray::new(["a.nc", "b.nc", "c.nc", "d.nc"].map(PathBuf::from).to_vec());
+        tray.set_error(1, Some("no spectra".to_owned()));
+        for signed in [0, 2] {
+            tray.set_standing(signed, Standing { state: GranuleState::SignedOff, counts: None });
+        }
+        tray
+    }
+
+    #[test]
+    fn a_file_that_cannot_be_used_is_stepped_over() {
+        let tray = tray();
+        assert_eq!(tray.next(None), Some(0));
+        assert_eq!(tray.next(Some(0)), Some(2));
+        assert_eq!(tray.next(Some(3)), None);
+        assert_eq!(tray.previous(2), Some(0));
+        assert_eq!(tray.previous(0), None);
+    }
+
+    #[test]
+    fn the_first_that_is_not_signed_off_is_found_all_around() {
+        let mut tray = tray();
+        assert_eq!(tray.next_unsigned(None), Some(3));
+        assert_eq!(tray.next_unsigned(Some(3)), None);
+        tray.set_error(1, None);
+        assert_eq!(tray.next_unsigned(Some(3)), Some(1));
+        assert_eq!(Tray::default().next_unsigned(None), None);
+    }
+}

@@ -1,0 +1,248 @@
+//! What the answers of jobs do to the state. An answer that is no longer waited for is dropped.
+
+use std::path::PathBuf;
+use std::sync::Arc;
+
+use crate::layers::{Layer, LayerUnit};
+use crate::review::{Record, Review, Spectrum};
+use crate::tray::Standing;
+
+use super::app::{App, Table};
+use super::bench::{Bench, Quality, RecordState};
+use super::colour::Tone;
+use super::deciding;
+use super::jobs::{Answer, Job};
+use super::looking;
+use super::panes::Pane;
+use super::place::Place;
+use super::shown_layer::ShownLayer;
+use super::turning;
+
+/// Takes an answer.
+pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
+    match answer {
+        Answer::Standing { entry, found } => standing(app, entry, found),
+        Answer::Opened { request, found } => opened(app, request, found),
+        Answer::Filling { request, share } => filling(app, request, share),
+        Answer::Filled { request, found } => filled(app, request, found),
+        Answer::Record { request, found } => record(app, request, found),
+        Answer::Layer { request, found } => layer(app, request, found),
+        Answer::Indices { request, found } => indices(app, request, found),
+        Answer::Quality { request, found } => quality(app, request, found),
+        Answer::Spectrum { request, found } => spectrum(app, request, found),
+        Answer::Exported { request, found } => exported(app, request, found),
+    }
+}
+
+fn standing(app: &mut App, entry: usize, found: Result<Standing, String>) -> Vec<Job> {
+    match found {
+        // What the open record says is newer than what was read from the disk.
+        Ok(_) if app.bench().is_some_and(|bench| bench.entry == entry) => {}
+        Ok(standing) => app.tray.set_standing(entry, standing),
+        Err(why) => app.tray.set_error(entry, Some(why)),
+    }
+    let waiting = matches!(app.table, Table::Empty);
+    if waiting { turning::open_first(app) } else { Vec::new() }
+}
+
+fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Vec<Job> {
+    let Table::Opening { entry, request: awaited, direction } = app.table else {
+        return Vec::new();
+    };
+    if awaited != request {
+        return Vec::new();
+    }
+    let review = match found {
+        Ok(review) => review,
+        Err(why) => return turning::could_not_open(app, entry, direction, why),
+    };
+    app.tray.set_error(entry, None);
+    let first_layer = app.outside.first_layer.clone();
+    let mut bench = Bench::new(entry, review, first_layer);
+    let (fill, record, quality) = (app.request(), app.request(), app.request());
+    bench.filling.request = fill;
+    bench.awaited.record = record;
+    bench.awaited.quality = quality;
+    let mut jobs = vec![
+        Job::Fill {
+            request: fill,
+            review: Arc::clone(&bench.review),
+            cancel: bench.filling.cancel.clone(),
+        },
+        Job::Record { request: record, review: Arc::clone(&bench.review) },
+        Job::Quality { request: quality, review: Arc::clone(&bench.review) },
+    ];
+    let problems = bench.review.granule().problems().len();
+    app.table = Table::Bench(Box::new(bench));
+    match problems {
+        0 => app.say(""),
+        1 => app.say("1 problem was found in the file; ! shows it"),
+        count => app.say(format!("{count} problems were found in the file; ! shows them")),
+    }
+    jobs.extend(looking::spectrum(app));
+    jobs.extend(looking::refresh_layer(app));
+    jobs
+}
+
+fn filling(app: &mut App, request: u64, share: f64) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.filling.request == request) else {
+        return Vec::new();
+    };
+    bench.filling.share = share;
+    more_is_there(app)
+}
+
+fn filled(app: &mut App, request: u64, found: Result<(), String>) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.filling.request == request) else {
+        return Vec::new();
+    };
+    bench.filling.done = true;
+    bench.filling.share = 1.0;
+    if let Err(why) = found {
+        bench.filling.problem = Some(why.clone());
+        app.message = (why, Tone::Bad);
+    }
+    // Whatever is on its way was begun without the last of the spectra.
+    let mut jobs = looking::refresh_layer(app);
+    jobs.extend(looking::refresh_indices(app));
+    looking::fill_pins(app);
+    jobs
+}
+
+/// More spectra are there: what is on show is evaluated anew, unless that is under way.
+fn more_is_there(app: &mut App) -> Vec<Job> {
+    let mut jobs = Vec::new();
+    let Some(awaited) = app.bench().map(|bench| bench.awaited) else { return jobs };
+    if awaited.layer == 0 {
+        jobs.extend(looking::refresh_layer(app));
+    }
+    if awaited.indices == 0 {
+        jobs.extend(looking::refresh_indices(app));
+    }
+    looking::fill_pins(app);
+    jobs
+}
+
+fn record(
+    app: &mut App,
+    request: u64,
+    found: Result<(Box<Record>, Option<Place>), String>,
+) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.record == request) else {
+        return Vec::new();
+    };
+    bench.awaited.record = 0;
+    match found {
+        Ok((record, place)) => {
+            let problem = record.problems().first().cloned();
+            bench.record = RecordState::Open(record);
+            deciding::update_tray(app);
+            if let Some(problem) = problem {
+                app.warn(problem);
+            }
+            place.map_or_else(Vec::new, |place| go_to_place(app, &place))
+        }
+        Err(why) => {
+            bench.record = RecordState::Failed(why.clone());
+            app.message = (format!("nothing can be decided: {why}"), Tone::Bad);
+            Vec::new()
+        }
+    }
+}
+
+/// Goes back to where one was, unless keys have gone somewhere else by now.
+fn go_to_place(app: &mut App, place: &Place) -> Vec<Job> {
+    let asked_for = app.outside.first_layer.is_some();
+    let pane = Pane::ALL.into_iter().find(|pane| Some(pane.name()) == place.pane.as_deref());
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    if bench.touched {
+        return Vec::new();
+    }
+    bench.go_to(place);
+    let layer = place.layer.clone().filter(|layer| !asked_for && *layer != bench.wanted);
+    app.focus = pane.unwrap_or(app.focus);
+    looking::fill_pins(app);
+    let mut jobs = looking::spectrum(app);
+    if let Some(layer) = layer {
+        jobs.extend(looking::show_layer(app, &layer));
+    }
+    jobs
+}
+
+fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.layer == request) else {
+        return Vec::new();
+    };
+    bench.awaited.layer = 0;
+    match found {
+        Ok(layer) => {
+            if bench.layer.text != bench.wanted {
+                bench.side = None;
+                bench.layer = ShownLayer::waiting(&bench.wanted);
+            }
+            let difference = layer.unit == LayerUnit::KelvinDifference;
+            bench.layer.fill(layer.values, layer.unit.label(), difference, layer.notes);
+        }
+        Err(why) if bench.layer.text == bench.wanted => bench.layer.problem = Some(why),
+        Err(why) => {
+            // What was on show stays.
+            bench.wanted = bench.layer.text.clone();
+            app.warn(why);
+        }
+    }
+    Vec::new()
+}
+
+fn indices(app: &mut App, request: u64, found: Vec<Result<Layer, String>>) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.indices == request) else {
+        return Vec::new();
+    };
+    bench.awaited.indices = 0;
+    for (index, found) in bench.indices.iter_mut().zip(found) {
+        index.values = found.map(|layer| {
+            index.unit = layer.unit.label().to_owned();
+            layer.values
+        });
+    }
+    Vec::new()
+}
+
+fn quality(app: &mut App, request: u64, found: Vec<Quality>) -> Vec<Job> {
+    if let Some(bench) = awaited(app, |bench| bench.awaited.quality == request) {
+        bench.awaited.quality = 0;
+        bench.quality = found;
+    }
+    Vec::new()
+}
+
+fn spectrum(app: &mut App, request: u64, found: Result<Spectrum, String>) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.spectrum == request) else {
+        return Vec::new();
+    };
+    bench.awaited.spectrum = 0;
+    match found {
+        Ok(spectrum) => bench.spectrum = Some(spectrum),
+        Err(why) => bench.spectrum_problem = Some(why),
+    }
+    Vec::new()
+}
+
+fn exported(app: &mut App, request: u64, found: Result<PathBuf, String>) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.export == request) else {
+        return Vec::new();
+    };
+    bench.awaited.export = 0;
+    app.message = match found {
+        Ok(path) => {
+            let path = crate::system::clean_text(&path.to_string_lossy());
+            (format!("exported to {path}"), Tone::Good)
+        }
+        Err(why) => (format!("not exported: {why}"), Tone::Bad),
+    };
+    Vec::new()
+}
+
+/// The granule on the table, if it waits for this answer.
+fn awaited(app: &mut App, is_awaited: impl FnOnce(&Bench) -> bool) -> Option<&mut Bench> {
+    app.bench_mut().filter(|bench| is_awaited(bench))
+}

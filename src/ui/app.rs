@@ -1,0 +1,244 @@
+//! The state of the screen. `update` changes it, `draw` reads it.
+
+use std::path::PathBuf;
+use std::sync::Arc;
+
+use jiff::Timestamp;
+use ratatui::layout::{Rect, Size};
+
+use crate::flags::{Author, Campaign};
+use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::review::Record;
+use crate::tray::Tray;
+
+use super::bench::{Bench, RecordState};
+use super::colour::{Theme, Tone};
+use super::event::Ending;
+use super::line::History;
+use super::overlay::Overlay;
+use super::panes::{Pane, ScreenLayout};
+
+/// What the review is given from outside; the same for its whole life.
+#[derive(Clone)]
+pub struct Outside {
+    /// The program that reads files.
+    pub reader: ReaderProgram,
+    /// What a reader may use.
+    pub limits: ReadLimits,
+    /// Where decisions, places and exports go.
+    pub campaign: Campaign,
+    /// Who sits there.
+    pub author: Author,
+    /// The version of this program.
+    pub program: String,
+    /// The wall clock.
+    pub clock: Arc<dyn Fn() -> Timestamp + Send + Sync>,
+    /// The layer to begin with instead of the suggested one.
+    pub first_layer: Option<String>,
+}
+
+/// What lies on the table.
+pub enum Table {
+    /// Nothing: no granule could be opened, or none was there.
+    Empty,
+    /// The granule of this entry is being opened, as an answer to this request.
+    Opening {
+        /// The entry of the Tray.
+        entry: usize,
+        /// The request that is to be answered.
+        request: u64,
+        /// Where to look further if it can't be opened.
+        direction: Direction,
+    },
+    /// A granule.
+    Bench(Box<Bench>),
+}
+
+/// Which way to go through the Tray.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Direction {
+    /// Towards its end.
+    Forward,
+    /// Towards its beginning.
+    Backward,
+    /// Towards its end, past what is signed off.
+    ForwardUnsigned,
+}
+
+/// The whole state.
+pub struct App {
+    /// What was given from outside.
+    pub outside: Arc<Outside>,
+    /// How the screen looks.
+    pub theme: Theme,
+    /// The granules in hand.
+    pub tray: Tray,
+    /// The row of the Tray under its own cursor.
+    pub tray_cursor: usize,
+    /// The granule on the table.
+    pub table: Table,
+    /// Records of granules left while their last decisions were still on the way to the disk.
+    pub left: Vec<Record>,
+    /// The pane that takes the keys.
+    pub focus: Pane,
+    /// The pane that has the screen for itself.
+    pub zoomed: Option<Pane>,
+    /// What lies over the panes.
+    pub overlay: Overlay,
+    /// Lines of the Evidence that are scrolled away.
+    pub evidence_scroll: usize,
+    /// What happened last.
+    pub message: (String, Tone),
+    /// What was typed on the command line.
+    pub history: History,
+    /// The flag that was given last, for giving it once more.
+    pub last_flag: Option<String>,
+    /// Where the panes lie; none on a screen that is too small. Kept by the drawing loop.
+    pub layout: Option<ScreenLayout>,
+    /// Whether mouse reports are on.
+    pub mouse: bool,
+    /// The person wants to leave as soon as everything is written.
+    pub leaving: bool,
+    /// The program is to end: with this exit code.
+    pub ended: Option<u8>,
+    /// Something changed since the last drawing.
+    pub changed: bool,
+    /// The screen has to be drawn from scratch.
+    pub redraw: bool,
+    /// The terminal has to be taken over anew.
+    pub renew: bool,
+    /// Whether frames are marked as such for the terminal, so that it shows none half-way.
+    pub synchronised: bool,
+    /// The program is to stop to the shell.
+    pub suspend: bool,
+    requests: u64,
+}
+
+impl App {
+    /// The state before anything was opened.
+    pub fn new(outside: Outside, theme: Theme, tray: Tray) -> App {
+        App {
+            outside: Arc::new(outside),
+            theme,
+            tray,
+            tray_cursor: 0,
+            table: Table::Empty,
+            left: Vec::new(),
+            focus: Pane::Field,
+            zoomed: None,
+            overlay: Overlay::None,
+            evidence_scroll: 0,
+            message: (String::new(), Tone::Plain),
+            history: History::default(),
+            last_flag: None,
+            layout: None,
+            mouse: false,
+            leaving: false,
+            ended: None,
+            changed: true,
+            redraw: false,
+            renew: false,
+            synchronised: true,
+            suspend: false,
+            requests: 0,
+        }
+    }
+
+    /// The number of the next request.
+    pub fn request(&mut self) -> u64 {
+        self.requests += 1;
+        self.requests
+    }
+
+    /// The granule on the table.
+    pub fn bench(&self) -> Option<&Bench> {
+        match &self.table {
+            Table::Bench(bench) => Some(bench),
+            _ => None,
+        }
+    }
+
+    /// The granule on the table, to change what is shown of it.
+    pub fn bench_mut(&mut self) -> Option<&mut Bench> {
+        match &mut self.table {
+            Table::Bench(bench) => Some(bench),
+            _ => None,
+        }
+    }
+
+    /// The Tray's entry that is on the table or on its way there.
+    pub fn current_entry(&self) -> Option<usize> {
+        match &self.table {
+            Table::Empty => None,
+            Table::Opening { entry, .. } => Some(*entry),
+            Table::Bench(bench) => Some(bench.entry),
+        }
+    }
+
+    /// Says something in the status line.
+    pub fn say(&mut self, words: impl Into<String>) {
+        self.message = (words.into(), Tone::Plain);
+    }
+
+    /// Warns in the status line.
+    pub fn warn(&mut self, words: impl Into<String>) {
+        self.message = (words.into(), Tone::Warning);
+    }
+
+    /// The time by the clock that was passed in.
+    pub fn now(&self) -> Timestamp {
+        (self.outside.clock)()
+    }
+
+    /// All records that may still be writing: the table's and those left behind.
+    pub fn records_mut(&mut self) -> impl Iterator<Item = &mut Record> {
+        let table = match &mut self.table {
+            Table::Bench(bench) => bench.record.open_mut(),
+            _ => None,
+        };
+        self.left.iter_mut().chain(table)
+    }
+
+    /// Takes all records out, to wait for their last decisions.
+    pub fn take_records(&mut self) -> Vec<Record> {
+        let mut records = std::mem::take(&mut self.left);
+        if let Table::Bench(bench) = std::mem::replace(&mut self.table, Table::Empty)
+            && let RecordState::Open(record) = bench.record
+        {
+            records.push(*record);
+        }
+        records
+    }
+
+    /// Lays the panes out on a screen of this size.
+    pub fn lay_out(&mut self, size: Size) {
+        self.layout = ScreenLayout::of(Rect::new(0, 0, size.width, size.height), self.zoomed);
+    }
+
+    /// Decisions that are not known to be on the disk, in all granules.
+    pub fn pending(&self) -> usize {
+        let table = self.bench().and_then(|bench| bench.record.open()).map_or(0, Record::pending);
+        table + self.left.iter().map(Record::pending).sum::<usize>()
+    }
+
+    /// Why decisions could not be written, if they could not.
+    pub fn write_failure(&self) -> Option<&str> {
+        let table = self.bench().and_then(|bench| bench.record.open());
+        table.into_iter().chain(&self.left).find_map(Record::failure)
+    }
+
+    /// Ends at once with the exit code that belongs to the reason.
+    pub fn end(&mut self, ending: Ending) {
+        let number = match ending {
+            Ending::Signal(number) => number,
+            // As if the hang-up had been signalled.
+            Ending::TerminalGone => 1,
+        };
+        self.ended = Some(u8::try_from(128 + number).unwrap_or(u8::MAX));
+    }
+
+    /// Where exports go unless another folder is named.
+    pub fn export_folder(&self) -> PathBuf {
+        self.outside.campaign.folder().join("exports")
+    }
+}

@@ -1,0 +1,330 @@
+//! The granule on the table, as the screen holds it.
+
+use std::sync::Arc;
+
+use crate::flags::FootprintSet;
+use crate::granule::Channel;
+use crate::review::{Record, Review, Spectrum};
+use crate::system::Cancel;
+
+use super::channels::Channels;
+use super::command::Side;
+use super::overlay::Selection;
+use super::panes::field::Placement;
+use super::place::Place;
+use super::shown_layer::ShownLayer;
+use super::spectrum_window::SpectrumWindow;
+
+/// The footprints that can be pinned at once; more spectra cannot be told apart.
+pub const MOST_PINS: usize = 4;
+
+/// The granule on the table.
+pub struct Bench {
+    /// Its entry in the Tray.
+    pub entry: usize,
+    /// The granule itself.
+    pub review: Arc<Review>,
+    /// Where its footprints lie on the map.
+    pub placement: Placement,
+    /// Its channels in one order.
+    pub channels: Channels,
+    /// What was decided.
+    pub record: RecordState,
+    /// The footprint under the cursor.
+    pub cursor: usize,
+    /// The corner at which a box was begun.
+    pub anchor: Option<usize>,
+    /// One side of a value of the layer, while it is selected.
+    pub side: Option<Side>,
+    /// The layer on show.
+    pub layer: ShownLayer,
+    /// The layer asked for: the one on show, or the one that takes its place when it is there.
+    pub wanted: String,
+    /// The layers that keys step through.
+    pub suggested: Vec<String>,
+    /// The spectrum under the cursor, once it is there.
+    pub spectrum: Option<Spectrum>,
+    /// Why there is no spectrum, if so.
+    pub spectrum_problem: Option<String>,
+    /// The pinned footprints.
+    pub pins: Vec<Pinned>,
+    /// The indices of the Evidence: expression and values or why there are none.
+    pub indices: Vec<Index>,
+    /// The window channels of the Evidence.
+    pub windows: Vec<Channel>,
+    /// What the producer says about quality: variables with their values.
+    pub quality: Vec<Quality>,
+    /// The part of the spectrum on show.
+    pub window: SpectrumWindow,
+    /// The channel in hand, by its number in `channels`.
+    pub channel: usize,
+    /// Radiances are on show instead of brightness temperatures.
+    pub radiance: bool,
+    /// Steps that the Field is zoomed in.
+    pub field_zoom: u8,
+    /// How far the reading of the spectra has come.
+    pub filling: Filling,
+    /// The requests whose answers are waited for.
+    pub awaited: Awaited,
+    /// A key has changed what is on show, so that a kept place comes too late.
+    pub touched: bool,
+}
+
+/// What was decided about the granule.
+pub enum RecordState {
+    /// Its content and its ledgers are still being read.
+    Reading,
+    /// All is known, and new decisions can be written.
+    Open(Box<Record>),
+    /// It can't be; in words.
+    Failed(String),
+}
+
+impl RecordState {
+    /// The record, if it is open.
+    pub fn open(&self) -> Option<&Record> {
+        match self {
+            RecordState::Open(record) => Some(record),
+            _ => None,
+        }
+    }
+
+    /// The record, if it is open, to decide.
+    pub fn open_mut(&mut self) -> Option<&mut Record> {
+        match self {
+            RecordState::Open(record) => Some(record),
+            _ => None,
+        }
+    }
+}
+
+/// A footprint pinned to compare.
+pub struct Pinned {
+    /// Which.
+    pub footprint: usize,
+    /// Its letter on the map and at the curve.
+    pub letter: char,
+    /// Its spectrum, once it is there.
+    pub spectrum: Option<Spectrum>,
+}
+
+/// An index of the Evidence.
+pub struct Index {
+    /// The expression.
+    pub text: String,
+    /// What it tells, in two words.
+    pub label: String,
+    /// Its unit's label.
+    pub unit: String,
+    /// One value per footprint, or why there are none.
+    pub values: Result<Vec<f64>, String>,
+}
+
+/// A variable of the producer's on quality.
+pub struct Quality {
+    /// Its number among the granule's variables.
+    pub variable: usize,
+    /// One value per footprint, or why there are none.
+    pub values: Result<Vec<f64>, String>,
+}
+
+/// How far the reading of the spectra has come.
+#[derive(Default)]
+pub struct Filling {
+    /// The request of the job that reads.
+    pub request: u64,
+    /// Ends that job.
+    pub cancel: Cancel,
+    /// The share that is there, 0 to 1.
+    pub share: f64,
+    /// All is there.
+    pub done: bool,
+    /// Why some of it can't be read, if so.
+    pub problem: Option<String>,
+}
+
+/// The numbers of requests whose answers are waited for; 0 is none.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct Awaited {
+    /// Reading the ledgers.
+    pub record: u64,
+    /// Evaluating the layer.
+    pub layer: u64,
+    /// Reading the spectrum under the cursor.
+    pub spectrum: u64,
+    /// Evaluating the indices.
+    pub indices: u64,
+    /// Reading what the producer says about quality.
+    pub quality: u64,
+    /// Writing an export.
+    pub export: u64,
+}
+
+impl Bench {
+    /// A granule just put on the table, with `first_layer` or the first suggested one asked for.
+    pub fn new(entry: usize, review: Arc<Review>, first_layer: Option<String>) -> Bench {
+        let granule = review.granule();
+        let place = granule.geolocation();
+        let coordinates = place.latitude.as_deref().zip(place.longitude.as_deref());
+        let placement = Placement::unfold(granule.footprints().lengths(), coordinates);
+        let channels = Channels::of(granule.bands().iter().map(|band| &band.axis));
+        let (low, high) = channels.range().unwrap_or((0.0, 1.0));
+        let suggested = review.suggested_layers();
+        let wanted = first_layer.or_else(|| suggested.first().cloned()).unwrap_or_default();
+        let index = |(text, label): (&str, &str)| Index {
+            text: text.to_owned(),
+            label: label.to_owned(),
+            unit: String::new(),
+            values: Ok(Vec::new()),
+        };
+        let indices = review.first_look().into_iter().map(index).collect();
+        let windows = review.window_channels();
+        let first_window = windows.first().map_or(low, |channel| channel.wavenumber);
+        Bench {
+            entry,
+            placement,
+            channel: channels.nearest(first_window),
+            channels,
+            record: RecordState::Reading,
+            cursor: 0,
+            anchor: None,
+            side: None,
+            layer: ShownLayer::waiting(&wanted),
+            wanted,
+            suggested,
+            spectrum: None,
+            spectrum_problem: None,
+            pins: Vec::new(),
+            indices,
+            windows,
+            quality: Vec::new(),
+            window: SpectrumWindow::whole(low, high),
+            radiance: false,
+            field_zoom: 0,
+            filling: Filling::default(),
+            awaited: Awaited::default(),
+            touched: false,
+            review,
+        }
+    }
+
+    /// How many footprints there are.
+    pub fn footprints(&self) -> usize {
+        self.placement.footprints()
+    }
+
+    /// Moves the cursor; false if it is there already.
+    pub fn move_to(&mut self, footprint: usize) -> bool {
+        if footprint == self.cursor || footprint >= self.footprints() {
+            return false;
+        }
+        self.cursor = footprint;
+        true
+    }
+
+    /// What the next decision is about: one side of a value, else the box, else the footprint
+    /// under the cursor.
+    pub fn selection(&self) -> Selection {
+        if let Some(side) = self.side {
+            return self.side_selection(side);
+        }
+        match self.anchor {
+            Some(anchor) => {
+                let footprints: FootprintSet =
+                    self.placement.footprints_between(anchor, self.cursor).into_iter().collect();
+                let words = format!("box of {}", footprints.len());
+                Selection { footprints, words }
+            }
+            None => Selection {
+                footprints: FootprintSet::single(self.cursor),
+                words: format!("footprint {}", self.position_words(self.cursor)),
+            },
+        }
+    }
+
+    /// The footprints on one side of a value of the layer.
+    pub fn side_selection(&self, side: Side) -> Selection {
+        let values = self.layer.values.iter().enumerate();
+        let footprints: FootprintSet =
+            values.filter(|(_, value)| side.holds(**value)).map(|(one, _)| one).collect();
+        let words = format!(
+            "{} {} {}: {}",
+            self.layer.text,
+            side.relation.symbol(),
+            side.value,
+            footprints.len()
+        );
+        Selection { footprints, words }
+    }
+
+    /// The zero-based indices of a footprint along its dimensions: `(12, 34, 5)`.
+    pub fn position_words(&self, footprint: usize) -> String {
+        let position = self.review.granule().footprints().position(footprint);
+        let parts: Vec<String> = position.iter().map(usize::to_string).collect();
+        format!("({})", parts.join(", "))
+    }
+
+    /// Lets go of box and side; false if there was neither.
+    pub fn drop_selection(&mut self) -> bool {
+        self.anchor.take().is_some() | self.side.take().is_some()
+    }
+
+    /// The wavenumber of the channel in hand, cm-1.
+    pub fn channel_wavenumber(&self) -> Option<f64> {
+        self.channels.wavenumber(self.channel)
+    }
+
+    /// Takes a channel in hand and keeps it in view.
+    pub fn take_channel(&mut self, number: usize) {
+        self.channel = number.min(self.channels.len().saturating_sub(1));
+        if let Some(wavenumber) = self.channel_wavenumber() {
+            self.window.keep_in_view(wavenumber);
+        }
+    }
+
+    /// Where one is, to be kept.
+    pub fn place(&self, pane: &str) -> Place {
+        Place {
+            cursor: self.cursor,
+            layer: Some(self.wanted.clone()),
+            channel: self.channel_wavenumber(),
+            window: (!self.window.is_whole()).then(|| self.window.shown()),
+            radiance: self.radiance,
+            field_zoom: self.field_zoom,
+            pane: Some(pane.to_owned()),
+            pins: self.pins.iter().map(|pin| pin.footprint).collect(),
+        }
+    }
+
+    /// Goes back to where one was.
+    pub fn go_to(&mut self, place: &Place) {
+        self.move_to(place.cursor);
+        if let Some(wavenumber) = place.channel.filter(|wavenumber| wavenumber.is_finite()) {
+            self.channel = self.channels.nearest(wavenumber);
+        }
+        if let Some((low, high)) = place.window.filter(|(low, high)| low < high) {
+            self.window.show(low, high);
+        }
+        self.radiance = place.radiance;
+        self.field_zoom = place.field_zoom.min(super::looking::MOST_FIELD_ZOOM);
+        let footprints = self.footprints();
+        for footprint in place.pins.iter().filter(|one| **one < footprints) {
+            self.pin(*footprint);
+        }
+    }
+
+    /// Pins a footprint, or takes its pin off; false where there are too many already.
+    pub fn pin(&mut self, footprint: usize) -> bool {
+        if let Some(place) = self.pins.iter().position(|pin| pin.footprint == footprint) {
+            self.pins.remove(place);
+            return true;
+        }
+        let taken = |letter: &char| self.pins.iter().any(|pin| pin.letter == *letter);
+        let Some(letter) = ('a'..).take(MOST_PINS).find(|letter| !taken(letter)) else {
+            return false;
+        };
+        let spectrum = self.spectrum.clone().filter(|spectrum| spectrum.footprint == footprint);
+        self.pins.push(Pinned { footprint, letter, spectrum });
+        true
+    }
+}

@@ -1,0 +1,219 @@
+//! Decisions from keys: flags, withdrawals, undo and redo, signing off, export.
+
+use std::path::PathBuf;
+use std::sync::Arc;
+
+use jiff::Timestamp;
+
+use crate::flags::{Act, Decision, GranuleState, Scope};
+use crate::review::{Record, Refusal};
+use crate::tray::Standing;
+
+use super::app::App;
+use super::bench::RecordState;
+use super::jobs::{Export, Job};
+use super::keys::{Action, hint_key};
+use super::looking::no_granule;
+use super::overlay::{FlagOrder, FlagPrompt, Overlay, Selection};
+
+/// Does what a key of deciding says.
+pub fn decide(app: &mut App, action: Action) -> Vec<Job> {
+    match action {
+        Action::Box => begin_box(app),
+        Action::Flag => choose_flag(app, true),
+        Action::Withdraw => choose_flag(app, false),
+        Action::FlagAgain => flag_again(app),
+        Action::Assess => assess(app),
+        Action::SignOff => ask_sign_off(app),
+        Action::Undo => change(app, |record, now| {
+            record.undo(now).map(|decision| format!("undone: {}", words(&decision)))
+        }),
+        Action::Redo => change(app, |record, now| {
+            record.redo(now).map(|decision| format!("redone: {}", words(&decision)))
+        }),
+        _ => change(app, |record, now| record.reopen(now).map(|()| "taken in hand again".into())),
+    }
+}
+
+/// Lets a verb change the record, says what came of it, and keeps the Tray in step.
+pub fn change(
+    app: &mut App,
+    verb: impl FnOnce(&mut Record, Timestamp) -> Result<String, Refusal>,
+) -> Vec<Job> {
+    let now = app.now();
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let outcome = match &mut bench.record {
+        RecordState::Open(record) => verb(record, now).map_err(|refusal| refusal.to_string()),
+        RecordState::Reading => Err("one moment: the ledgers are still being read".to_owned()),
+        RecordState::Failed(why) => Err(format!("nothing can be decided: {why}")),
+    };
+    match outcome {
+        Ok(words) => app.say(words),
+        Err(words) => app.warn(words),
+    }
+    update_tray(app);
+    Vec::new()
+}
+
+/// Says why nothing can be decided yet, or at all.
+fn not_ready(app: &mut App) -> Vec<Job> {
+    change(app, |_, _| Ok(String::new()))
+}
+
+/// Takes the state of the granule on the table over into the Tray.
+pub fn update_tray(app: &mut App) {
+    let Some(bench) = app.bench() else { return };
+    let Some(record) = bench.record.open() else { return };
+    let (state, counts) = (record.state().granule, Some(record.counts().clone()));
+    let entry = bench.entry;
+    app.tray.set_standing(entry, Standing { state, counts });
+}
+
+fn begin_box(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    bench.side = None;
+    bench.anchor = match bench.anchor {
+        Some(_) => None,
+        None => Some(bench.cursor),
+    };
+    if bench.anchor.is_some() {
+        let (flag, cancel) = (hint_key(Action::Flag), hint_key(Action::Cancel));
+        app.say(format!("box: move the cursor, {flag} flags it, {cancel} lets it go"));
+    }
+    Vec::new()
+}
+
+/// Opens the list of flags for the selection: all flags to give, those that are there to withdraw.
+fn choose_flag(app: &mut App, give: bool) -> Vec<Job> {
+    let Some(bench) = app.bench() else { return no_granule(app) };
+    let Some(record) = bench.record.open() else { return not_ready(app) };
+    let selection = bench.selection();
+    let there = selection
+        .footprints
+        .iter()
+        .fold(0, |flags, footprint| flags | record.state().any_flags(footprint));
+    let kinds = record.vocabulary().of_scope(Scope::Footprint);
+    let flags: Vec<String> = kinds
+        .iter()
+        .filter(|kind| give || there & kind.mask() != 0)
+        .map(|kind| kind.name.clone())
+        .collect();
+    if flags.is_empty() {
+        app.warn(format!("{}: no flag to withdraw", selection.words));
+        return Vec::new();
+    }
+    let last = app.last_flag.as_ref().and_then(|last| flags.iter().position(|flag| flag == last));
+    let cursor = last.unwrap_or(0);
+    app.overlay = Overlay::Flags(FlagPrompt { give, selection, flags, cursor, with_reason: false });
+    Vec::new()
+}
+
+fn flag_again(app: &mut App) -> Vec<Job> {
+    let Some(flag) = app.last_flag.clone() else { return choose_flag(app, true) };
+    let Some(bench) = app.bench() else { return no_granule(app) };
+    let selection = bench.selection();
+    carry_out(app, FlagOrder { give: true, flag, selection }, None)
+}
+
+/// Gives or withdraws a flag.
+pub fn carry_out(app: &mut App, order: FlagOrder, why: Option<String>) -> Vec<Job> {
+    let FlagOrder { give, flag, selection } = order;
+    let Selection { footprints, words } = selection;
+    let name = flag.clone();
+    let jobs = if give {
+        change(app, move |record, now| {
+            record.flag(&flag, &footprints, why, now).map(|()| format!("{words}: {flag}"))
+        })
+    } else {
+        change(app, move |record, now| {
+            let count = record.withdraw(&flag, &footprints, why, now)?;
+            Ok(format!("{words}: {flag} withdrawn from {count}"))
+        })
+    };
+    if give && app.message.1 != super::colour::Tone::Warning {
+        app.last_flag = Some(name);
+    }
+    drop_selection(app);
+    jobs
+}
+
+fn assess(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench() else { return no_granule(app) };
+    let Selection { footprints, words } = bench.selection();
+    let jobs = change(app, move |record, now| {
+        record.assess(&footprints, None, now).map(|()| format!("{words}: looked at"))
+    });
+    drop_selection(app);
+    jobs
+}
+
+fn drop_selection(app: &mut App) {
+    if let Some(bench) = app.bench_mut() {
+        bench.drop_selection();
+    }
+}
+
+/// Signing off asks what the footprints without flag and assessment are, if there are any.
+fn ask_sign_off(app: &mut App) -> Vec<Job> {
+    let record = app.bench().and_then(|bench| bench.record.open());
+    let signed = record.is_some_and(|record| record.state().granule == GranuleState::SignedOff);
+    match record {
+        Some(record) if !signed && record.counts().not_assessed > 0 => {
+            app.overlay = Overlay::SignOff;
+            Vec::new()
+        }
+        _ => sign_off(app, false),
+    }
+}
+
+/// Signs off, the rest counting as looked at or not.
+pub fn sign_off(app: &mut App, rest_looked_at: bool) -> Vec<Job> {
+    let next = hint_key(Action::NextUnsigned);
+    change(app, move |record, now| {
+        record.sign_off(rest_looked_at, now)?;
+        Ok(format!("signed off; {next} goes to the next granule, u takes it back"))
+    })
+}
+
+/// Exports the mask of the granule on the table, into `folder` or the campaign's own.
+pub fn export(app: &mut App, folder: Option<String>) -> Vec<Job> {
+    let request = app.request();
+    let folder = folder.map_or_else(|| app.export_folder(), PathBuf::from);
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let Some(record) = bench.record.open() else { return not_ready(app) };
+    let export = Export {
+        request,
+        review: Arc::clone(&bench.review),
+        identity: record.identity().clone(),
+        state: record.state().clone(),
+        decisions: record.decisions().to_vec(),
+        folder,
+    };
+    bench.awaited.export = request;
+    app.say("exporting…");
+    vec![Job::Export(Box::new(export))]
+}
+
+/// A decision in a few words.
+pub fn words(decision: &Decision) -> String {
+    let count = decision.act.footprints().map_or(0, crate::flags::FootprintSet::len);
+    let what = match &decision.act {
+        Act::Flag { flag, .. } => format!("{flag} at {count}"),
+        Act::Withdraw { flag, .. } => format!("{flag} withdrawn at {count}"),
+        Act::FlagChannels { flag, channels } => format!("{flag} at {} channels", channels.len()),
+        Act::WithdrawChannels { flag, channels } => {
+            format!("{flag} withdrawn at {} channels", channels.len())
+        }
+        Act::Assess { .. } => format!("looked at {count}"),
+        Act::Revoke { .. } => "undo".to_owned(),
+        Act::SignOff { .. } => "sign-off".to_owned(),
+        Act::SetAside => "set aside".to_owned(),
+        Act::Reopen => "taken in hand again".to_owned(),
+        Act::Comment { .. } => "remark".to_owned(),
+        Act::Unknown { kind } => format!("{kind}, which this version does not know"),
+    };
+    match &decision.why {
+        Some(why) => format!("{what} ({})", crate::system::clean_text(why)),
+        None => what,
+    }
+}

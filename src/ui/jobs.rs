@@ -1,0 +1,181 @@
+//! Work that runs beside the keys: jobs are values, their answers are events.
+
+use std::path::PathBuf;
+use std::sync::Arc;
+
+use crate::flags::{Decision, FlagState, GranuleIdentity};
+use crate::layers::Layer;
+use crate::review::{Record, Review, Spectrum};
+use crate::system::Cancel;
+use crate::tray::Standing;
+
+use super::bench::Quality;
+use super::place::Place;
+
+/// Something to be done. Each carries the number of its request, which the answer repeats: an
+/// answer whose number is no longer waited for is dropped.
+pub enum Job {
+    /// Look what the ledgers say about a granule, without opening it on the table.
+    Standing {
+        /// The entry of the Tray.
+        entry: usize,
+        /// The file.
+        path: PathBuf,
+    },
+    /// Open a granule.
+    Open {
+        /// The request.
+        request: u64,
+        /// The file.
+        path: PathBuf,
+    },
+    /// Read all spectra of a granule.
+    Fill {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// Ends it early.
+        cancel: Cancel,
+    },
+    /// Hash a granule, read its ledgers, make ready to write.
+    Record {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+    },
+    /// Evaluate the layer on show.
+    Layer {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The expression.
+        text: String,
+    },
+    /// Evaluate the indices of the Evidence.
+    Indices {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The expressions.
+        texts: Vec<String>,
+    },
+    /// Read what the producer says about quality.
+    Quality {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+    },
+    /// Read one spectrum before all others.
+    Spectrum {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The footprint.
+        footprint: usize,
+    },
+    /// Keep a place.
+    Keep {
+        /// The granule by its content.
+        identity: GranuleIdentity,
+        /// The place in it.
+        place: Place,
+    },
+    /// Write the flag mask.
+    Export(Box<Export>),
+}
+
+/// What an export is made of.
+pub struct Export {
+    /// The request.
+    pub request: u64,
+    /// The granule.
+    pub review: Arc<Review>,
+    /// The granule by its content.
+    pub identity: GranuleIdentity,
+    /// The flags.
+    pub state: FlagState,
+    /// The decisions that they were folded from.
+    pub decisions: Vec<Decision>,
+    /// The folder to write into.
+    pub folder: PathBuf,
+}
+
+/// What a job found.
+pub enum Answer {
+    /// What the ledgers say about an entry of the Tray, or why it can't be used.
+    Standing {
+        /// The entry.
+        entry: usize,
+        /// What was found.
+        found: Result<Standing, String>,
+    },
+    /// A granule was opened, or could not be.
+    Opened {
+        /// The request.
+        request: u64,
+        /// The granule.
+        found: Result<Arc<Review>, String>,
+    },
+    /// So much of the spectra is there.
+    Filling {
+        /// The request.
+        request: u64,
+        /// The share, 0 to 1.
+        share: f64,
+    },
+    /// The reading of the spectra ended.
+    Filled {
+        /// The request.
+        request: u64,
+        /// What could not be read.
+        found: Result<(), String>,
+    },
+    /// The ledgers were read.
+    Record {
+        /// The request.
+        request: u64,
+        /// The record, and where one was in the granule the last time.
+        found: Result<(Box<Record>, Option<Place>), String>,
+    },
+    /// The layer was evaluated.
+    Layer {
+        /// The request.
+        request: u64,
+        /// The layer.
+        found: Result<Layer, String>,
+    },
+    /// The indices were evaluated.
+    Indices {
+        /// The request.
+        request: u64,
+        /// The layers in the order of the request.
+        found: Vec<Result<Layer, String>>,
+    },
+    /// What the producer says about quality was read.
+    Quality {
+        /// The request.
+        request: u64,
+        /// The variables with their values.
+        found: Vec<Quality>,
+    },
+    /// A spectrum was read.
+    Spectrum {
+        /// The request.
+        request: u64,
+        /// The spectrum.
+        found: Result<Spectrum, String>,
+    },
+    /// The flag mask was written.
+    Exported {
+        /// The request.
+        request: u64,
+        /// Where.
+        found: Result<PathBuf, String>,
+    },
+}

@@ -1,0 +1,119 @@
+//! Moving the cursor: over footprints, over the rows of the Tray, by key and by mouse.
+
+use super::app::App;
+use super::event::{Button, Mouse};
+use super::jobs::Job;
+use super::keys::Action;
+use super::looking;
+use super::panes::Pane;
+use super::views;
+
+/// Rows that a page moves where the Field is not on the screen.
+const PAGE: usize = 10;
+
+/// One step of the cursor.
+pub fn step(app: &mut App, action: Action) -> Vec<Job> {
+    if app.focus == Pane::Tray && in_tray(app, action) {
+        return Vec::new();
+    }
+    if app.focus == Pane::Evidence && in_evidence(app, action) {
+        return Vec::new();
+    }
+    let page = page(app);
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    let (from, map) = (bench.cursor, &bench.placement);
+    let far = isize::MAX / 2;
+    let to = match action {
+        Action::Up => map.moved(from, 0, -1),
+        Action::Down => map.moved(from, 0, 1),
+        Action::Left => map.moved(from, -1, 0),
+        Action::Right => map.moved(from, 1, 0),
+        Action::PageUp => map.moved(from, 0, -page),
+        Action::PageDown => map.moved(from, 0, page),
+        Action::RowStart => map.moved(from, -far, 0),
+        Action::RowEnd => map.moved(from, far, 0),
+        Action::First => 0,
+        Action::Last => map.footprints().saturating_sub(1),
+        _ => from,
+    };
+    go(app, to)
+}
+
+/// Puts the cursor on a footprint and asks for its spectrum.
+pub fn go(app: &mut App, footprint: usize) -> Vec<Job> {
+    let moved = app.bench_mut().is_some_and(|bench| bench.move_to(footprint));
+    if moved { looking::spectrum(app) } else { Vec::new() }
+}
+
+/// Moves the Tray's own cursor; false for keys that mean nothing there.
+fn in_tray(app: &mut App, action: Action) -> bool {
+    let last = app.tray.len().saturating_sub(1);
+    let to = match action {
+        Action::Up => app.tray_cursor.saturating_sub(1),
+        Action::Down => app.tray_cursor + 1,
+        Action::PageUp => app.tray_cursor.saturating_sub(PAGE),
+        Action::PageDown => app.tray_cursor + PAGE,
+        Action::First | Action::RowStart => 0,
+        Action::Last | Action::RowEnd => last,
+        _ => return false,
+    };
+    app.tray_cursor = to.min(last);
+    true
+}
+
+/// Pages scroll the Evidence; the arrows move the footprint that it is about.
+fn in_evidence(app: &mut App, action: Action) -> bool {
+    app.evidence_scroll = match action {
+        Action::PageUp => app.evidence_scroll.saturating_sub(PAGE / 2),
+        Action::PageDown => app.evidence_scroll + PAGE / 2,
+        _ => return false,
+    };
+    // A page beyond the end would have to be taken back unseen.
+    let rows = views::evidence_rows(app).len();
+    app.evidence_scroll = app.evidence_scroll.min(rows);
+    true
+}
+
+/// The rows of the map that the Field shows at once, less one to keep one's bearings.
+fn page(app: &App) -> isize {
+    let area = app.layout.and_then(|layout| layout.field);
+    let rows = match (area, app.bench()) {
+        (Some(area), Some(bench)) => {
+            let height = usize::from(area.height).saturating_sub(2) * 2;
+            let shown = bench.placement.rows() >> bench.field_zoom.min(16);
+            // A map that is shown whole moves by the third, one that is not by what is shown.
+            if bench.field_zoom == 0 { shown / 3 } else { height.min(shown).saturating_sub(1) }
+        }
+        _ => PAGE,
+    };
+    isize::try_from(rows.max(1)).unwrap_or(1)
+}
+
+/// A click puts the cursor there and gives the pane the keys; the wheel zooms the spectrum.
+pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
+    let Some(layout) = app.layout else { return Vec::new() };
+    let Some(pane) = layout.pane_at(mouse.column, mouse.row) else { return Vec::new() };
+    match (mouse.button, pane) {
+        (Button::WheelUp, Pane::Trace) => looking::trace(app, Action::ZoomIn),
+        (Button::WheelDown, Pane::Trace) => looking::trace(app, Action::ZoomOut),
+        (Button::WheelUp, Pane::Field) => looking::field(app, Action::FieldIn),
+        (Button::WheelDown, Pane::Field) => looking::field(app, Action::FieldOut),
+        (Button::Press | Button::Drag, Pane::Field) => {
+            app.focus = Pane::Field;
+            let Some(footprint) = views::footprint_under(app, mouse.column, mouse.row) else {
+                return Vec::new();
+            };
+            if mouse.button == Button::Drag {
+                if let Some(bench) = app.bench_mut() {
+                    bench.anchor.get_or_insert(bench.cursor);
+                }
+            }
+            go(app, footprint)
+        }
+        (Button::Press, pane) => {
+            app.focus = pane;
+            Vec::new()
+        }
+        _ => Vec::new(),
+    }
+}

@@ -1,0 +1,158 @@
+//! What lies over the panes and takes the keys: help, prompts, questions.
+
+use crate::flags::FootprintSet;
+
+use super::line::Line;
+
+/// What takes the keys before the panes do.
+#[derive(Debug, Default)]
+pub enum Overlay {
+    /// Nothing: keys are actions.
+    #[default]
+    None,
+    /// The help, scrolled by so many lines.
+    Help(usize),
+    /// The problems found in the file, scrolled by so many lines.
+    Problems(usize),
+    /// A line being typed.
+    Line(LinePrompt),
+    /// A flag being chosen.
+    Flags(FlagPrompt),
+    /// Whether the rest counts as looked at when the granule is signed off.
+    SignOff,
+    /// Decisions could not be written: leave all the same?
+    LeaveAnyway,
+}
+
+/// A line being typed.
+#[derive(Debug)]
+pub struct LinePrompt {
+    /// What it is for.
+    pub purpose: Purpose,
+    /// What was typed.
+    pub line: Line,
+    /// What Tab offers, once it was pressed.
+    pub completions: Vec<String>,
+    /// The completion in hand.
+    pub chosen: Option<usize>,
+    /// What is wrong with it, or empty.
+    pub problem: String,
+}
+
+/// What a typed line is for.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Purpose {
+    /// A command.
+    Command,
+    /// One side of a value of the layer.
+    Side,
+    /// The reason of a flag or a withdrawal.
+    Reason(FlagOrder),
+    /// The reason of setting the granule aside.
+    Aside,
+    /// A remark on a selection.
+    Comment(Selection),
+}
+
+/// Footprints that something is about to happen to, and how they were chosen in words.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Selection {
+    /// Which.
+    pub footprints: FootprintSet,
+    /// "footprint (12, 34)", "box of 48", "bt(900) < 230".
+    pub words: String,
+}
+
+/// A flag to be given or withdrawn.
+#[derive(Debug, Clone, PartialEq)]
+pub struct FlagOrder {
+    /// Given, or else withdrawn.
+    pub give: bool,
+    /// The flag's name.
+    pub flag: String,
+    /// Where.
+    pub selection: Selection,
+}
+
+/// A flag being chosen.
+#[derive(Debug, Clone)]
+pub struct FlagPrompt {
+    /// To be given, or else withdrawn.
+    pub give: bool,
+    /// Where.
+    pub selection: Selection,
+    /// The names to choose from.
+    pub flags: Vec<String>,
+    /// The choice under the cursor.
+    pub cursor: usize,
+    /// Ask for a reason after the choice.
+    pub with_reason: bool,
+}
+
+impl LinePrompt {
+    /// A prompt that holds `text` already.
+    pub fn new(purpose: Purpose, text: &str) -> LinePrompt {
+        LinePrompt {
+            purpose,
+            line: Line::new(text),
+            completions: Vec::new(),
+            chosen: None,
+            problem: String::new(),
+        }
+    }
+
+    /// Takes the next completion, or the one before, or finds them first.
+    pub fn complete(&mut self, forward: bool, find: impl FnOnce(&str) -> Vec<String>) {
+        if self.completions.is_empty() {
+            self.completions = find(self.line.before_cursor());
+            self.chosen = None;
+        }
+        let count = self.completions.len();
+        if count == 0 {
+            return;
+        }
+        let next = match self.chosen {
+            None if forward => 0,
+            None => count - 1,
+            Some(chosen) => (chosen + if forward { 1 } else { count - 1 }) % count,
+        };
+        self.chosen = Some(next);
+        self.line.replace_before_cursor(&self.completions[next].clone());
+        if count == 1 {
+            // What was completed for good is the start of the next completion.
+            self.forget_completions();
+        }
+    }
+
+    /// The text changed: what was offered no longer fits.
+    pub fn forget_completions(&mut self) {
+        self.completions.clear();
+        self.chosen = None;
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn tab_goes_round_what_is_offered() {
+        let offer = |_: &str| vec!["layer lat".to_owned(), "layer lon".to_owned()];
+        let mut prompt = LinePrompt::new(Purpose::Command, "layer l");
+        let mut seen = Vec::new();
+        for forward in [true, true, true, false] {
+            prompt.complete(forward, offer);
+            seen.push(prompt.line.text().to_owned());
+        }
+        assert_eq!(seen, ["layer lat", "layer lon", "layer lat", "layer lon"]);
+    }
+
+    #[test]
+    fn a_single_completion_is_taken_for_good() {
+        let mut prompt = LinePrompt::new(Purpose::Command, "la");
+        prompt.complete(true, |_| vec!["layer ".to_owned()]);
+        assert_eq!((prompt.line.text(), prompt.completions.len()), ("layer ", 0));
+        prompt.complete(true, |_| Vec::new());
+        assert_eq!(prompt.line.text(), "layer ");
+    }
+}

@@ -1,0 +1,74 @@
+//! The place: where one was in a granule, kept between sessions.
+
+use serde::{Deserialize, Serialize};
+
+use crate::flags::{Campaign, GranuleIdentity};
+
+/// Where one was.
+#[derive(Debug, Clone, Default, PartialEq, Serialize, Deserialize)]
+#[serde(default)]
+pub struct Place {
+    /// The footprint under the cursor.
+    pub cursor: usize,
+    /// The layer on show.
+    pub layer: Option<String>,
+    /// The wavenumber of the channel in hand, cm-1.
+    pub channel: Option<f64>,
+    /// The part of the spectrum on show, cm-1; none for all of it.
+    pub window: Option<(f64, f64)>,
+    /// Radiances are on show instead of brightness temperatures.
+    pub radiance: bool,
+    /// Steps that the Field is zoomed in.
+    pub field_zoom: u8,
+    /// The pane in focus, by its name.
+    pub pane: Option<String>,
+    /// The pinned footprints.
+    pub pins: Vec<usize>,
+}
+
+/// The place that a person left a granule at, or none where there is none that can be read.
+pub fn read(campaign: &Campaign, granule: &GranuleIdentity, person: &str) -> Option<Place> {
+    serde_json::from_value(campaign.place(granule, person)?).ok()
+}
+
+/// Keeps a place. It is a convenience: where it cannot be written, it is lost without a word.
+pub fn keep(campaign: &Campaign, granule: &GranuleIdentity, person: &str, place: &Place) {
+    if let Ok(value) = serde_json::to_value(place) {
+        let _ = campaign.keep_place(granule, person, &value);
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_place_comes_back_and_damage_is_no_place() {
+        let folder = tempfile::tempdir().unwrap();
+        let campaign = Campaign::open_or_create(folder.path()).unwrap();
+        let granule = GranuleIdentity {
+            hash: "0123456789abcdef".to_owned(),
+            size: 1,
+            name: "lowen.nc".to_owned(),
+            footprints: vec![("line".to_owned(), 100)],
+        };
+        assert_eq!(read(&campaign, &granule, "ada"), None);
+        let place = Place {
+            cursor: 77,
+            layer: Some("bt(900)".to_owned()),
+            window: Some((880.0, 920.0)),
+            pins: vec![3, 9],
+            ..Place::default()
+        };
+        keep(&campaign, &granule, "ada", &place);
+        assert_eq!(read(&campaign, &granule, "ada"), Some(place));
+        assert_eq!(read(&campaign, &granule, "bo"), None);
+        let damaged = serde_json::json!({ "cursor": -1 });
+        campaign.keep_place(&granule, "ada", &damaged).unwrap();
+        assert_eq!(read(&campaign, &granule, "ada"), None);
+        // What an older version wrote has fewer fields.
+        let older = serde_json::json!({ "cursor": 5 });
+        campaign.keep_place(&granule, "ada", &older).unwrap();
+        assert_eq!(read(&campaign, &granule, "ada").map(|place| place.cursor), Some(5));
+    }
+}

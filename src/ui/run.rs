@@ -1,0 +1,123 @@
+//! The loop: drain all events, then draw once if something changed. An idle screen writes nothing.
+
+use std::io;
+use std::sync::Arc;
+use std::sync::mpsc::{Receiver, RecvTimeoutError, channel};
+use std::time::Duration;
+
+use super::app::App;
+use super::draw::draw;
+use super::event::{Ending, Event};
+use super::runner::Runner;
+use super::terminal::Screen;
+use super::update::update;
+use super::{keyboard, signals, terminal, turning, work};
+
+/// While decisions are on their way to the disk, the ledger's writer is asked this often.
+const LEDGER_PAUSE: Duration = Duration::from_millis(15);
+/// How long the last decisions may take on the way out after a signal.
+const LAST_WRITES: Duration = Duration::from_secs(4);
+
+/// How a review ended.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Ended {
+    /// The exit code: 0, or 128 and the number of a signal.
+    pub code: u8,
+    /// Decisions that could not be written: how many and why.
+    pub unwritten: Option<String>,
+}
+
+/// Takes the terminal over and reviews until the person leaves or a signal comes. The terminal is
+/// given back in every case.
+///
+/// # Errors
+/// The terminal can't be taken over or read.
+pub fn run(mut app: App) -> io::Result<Ended> {
+    let (sender, events) = channel();
+    signals::listen(sender.clone())?;
+    let mut screen = Screen::take(app.mouse, app.synchronised)?;
+    keyboard::listen(sender.clone())?;
+    let mut runner = Runner::new(Arc::clone(&app.outside), sender);
+    for job in turning::start(&mut app) {
+        runner.start(job);
+    }
+    while app.ended.is_none() {
+        if show(&mut app, &mut screen).is_err() {
+            app.end(Ending::TerminalGone);
+            break;
+        }
+        let Some(event) = next_event(&app, &events) else { continue };
+        handle(&mut app, &mut screen, &mut runner, event);
+        while let Ok(event) = events.try_recv() {
+            handle(&mut app, &mut screen, &mut runner, event);
+        }
+    }
+    drop(screen);
+    Ok(finish(app))
+}
+
+/// Waits for the next event. While decisions are pending the writer may have news at any moment.
+fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
+    if app.pending() == 0 || (app.write_failure().is_some() && !app.leaving) {
+        return events.recv().ok();
+    }
+    match events.recv_timeout(LEDGER_PAUSE) {
+        Ok(event) => Some(event),
+        Err(RecvTimeoutError::Timeout) => Some(Event::LedgerMoved),
+        Err(RecvTimeoutError::Disconnected) => None,
+    }
+}
+
+fn handle(app: &mut App, screen: &mut Screen, runner: &mut Runner, event: Event) {
+    // Whether the ledger's writer has news shows itself in `update`.
+    app.changed |= !matches!(event, Event::LedgerMoved);
+    let mouse = app.mouse;
+    for job in update(app, event) {
+        runner.start(job);
+    }
+    if mouse != app.mouse {
+        // A terminal that is gone shows itself at the next drawing.
+        let _ = screen.set_mouse(app.mouse);
+    }
+}
+
+/// Draws, if something changed.
+fn show(app: &mut App, screen: &mut Screen) -> io::Result<()> {
+    if app.suspend {
+        app.suspend = false;
+        terminal::give_back();
+        signals::stop();
+        app.renew = true;
+    }
+    if app.renew {
+        app.renew = false;
+        // All settings of the terminal may have been changed meanwhile.
+        screen.take_again(app.mouse)?;
+        app.changed = true;
+    }
+    if std::mem::take(&mut app.redraw) {
+        screen.forget()?;
+        app.changed = true;
+    }
+    if !std::mem::take(&mut app.changed) {
+        return Ok(());
+    }
+    app.lay_out(screen.size()?);
+    screen.draw(|frame| draw(app, frame))
+}
+
+/// Keeps the place and waits for the last decisions, for a while.
+fn finish(mut app: App) -> Ended {
+    for job in turning::keep_place(&app) {
+        work::perform(&job, &app.outside, &|_| {});
+    }
+    let code = app.ended.unwrap_or(0);
+    let mut unwritten: Vec<String> = Vec::new();
+    for record in app.take_records() {
+        if let Err(error) = record.close(LAST_WRITES) {
+            unwritten.push(error.to_string());
+        }
+    }
+    let unwritten = (!unwritten.is_empty()).then(|| unwritten.join("; "));
+    Ended { code, unwritten }
+}

@@ -1,0 +1,169 @@
+//! From granule to granule, and out of the program.
+
+use super::app::{App, Direction, Table};
+use super::bench::RecordState;
+use super::colour::Tone;
+use super::jobs::Job;
+use super::keys::Action;
+use super::overlay::Overlay;
+use super::panes::Pane;
+
+/// The first jobs: look what the ledgers say about all granules, and open the first that is not
+/// signed off. Granules that no ledger can be about are known to be untouched without looking.
+pub fn start(app: &mut App) -> Vec<Job> {
+    let entries = app.tray.entries().iter().enumerate();
+    let mut jobs: Vec<Job> = entries
+        .filter(|(_, entry)| entry.standing.is_none())
+        .map(|(number, entry)| Job::Standing { entry: number, path: entry.path.clone() })
+        .collect();
+    jobs.extend(open_first(app));
+    jobs
+}
+
+/// Opens the first granule that is known not to be signed off, once no granule before it may be
+/// one; waits otherwise.
+pub fn open_first(app: &mut App) -> Vec<Job> {
+    let mut first = None;
+    for (number, entry) in app.tray.entries().iter().enumerate() {
+        if entry.error.is_some() || entry.is_signed_off() {
+            continue;
+        }
+        if entry.standing.is_none() {
+            app.say("looking for the first granule that is not signed off…");
+            return Vec::new();
+        }
+        first = Some(number);
+        break;
+    }
+    match first.or_else(|| app.tray.next(None)) {
+        Some(entry) => open(app, entry, Direction::ForwardUnsigned),
+        None => {
+            app.message = ("none of the files can be used".to_owned(), Tone::Bad);
+            app.focus = Pane::Tray;
+            Vec::new()
+        }
+    }
+}
+
+/// Next, previous, next not signed off, or the one under the Tray's cursor.
+pub fn turn(app: &mut App, action: Action) -> Vec<Job> {
+    let here = app.current_entry();
+    let (found, direction) = match action {
+        Action::NextGranule => (app.tray.next(here), Direction::Forward),
+        Action::PreviousGranule => {
+            (here.and_then(|here| app.tray.previous(here)), Direction::Backward)
+        }
+        Action::NextUnsigned => (app.tray.next_unsigned(here), Direction::ForwardUnsigned),
+        _ if app.focus != Pane::Tray => return Vec::new(),
+        _ => (Some(app.tray_cursor), Direction::Forward),
+    };
+    match found {
+        Some(entry) if Some(entry) != here => open(app, entry, direction),
+        Some(_) => Vec::new(),
+        None => {
+            app.say(match action {
+                Action::NextGranule => "this is the last granule",
+                Action::PreviousGranule => "this is the first granule",
+                _ => "no other granule is left to sign off",
+            });
+            Vec::new()
+        }
+    }
+}
+
+/// Puts the granule on the table away and opens another.
+pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
+    let Some((path, name)) =
+        app.tray.entry(entry).map(|entry| (entry.path.clone(), entry.name.clone()))
+    else {
+        return Vec::new();
+    };
+    let mut jobs = keep_place(app);
+    put_away(app);
+    let request = app.request();
+    app.table = Table::Opening { entry, request, direction };
+    app.tray_cursor = entry;
+    app.say(format!("opening {name}…"));
+    jobs.push(Job::Open { request, path });
+    jobs
+}
+
+/// A file that could not be opened is named in its row; the next one in the same direction is
+/// tried. A file that was opened by hand leaves the table empty instead.
+pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: String) -> Vec<Job> {
+    let name = app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default();
+    app.tray.set_error(entry, Some(why.clone()));
+    app.table = Table::Empty;
+    let next = match direction {
+        Direction::Forward => app.tray.next(Some(entry)),
+        Direction::Backward => app.tray.previous(entry),
+        Direction::ForwardUnsigned => app.tray.next_unsigned(Some(entry)),
+    };
+    let next = next.or_else(|| app.tray.previous(entry));
+    let jobs = next.map_or_else(Vec::new, |next| open(app, next, direction));
+    app.message = (format!("{name}: {why}"), Tone::Bad);
+    jobs
+}
+
+/// Ends the reading of the granule on the table; its record stays until all of it is on the disk.
+fn put_away(app: &mut App) {
+    let Table::Bench(bench) = std::mem::replace(&mut app.table, Table::Empty) else { return };
+    bench.filling.cancel.cancel();
+    if let RecordState::Open(record) = bench.record
+        && record.pending() > 0
+    {
+        app.left.push(*record);
+    }
+}
+
+/// The job that keeps the place in the granule on the table.
+pub fn keep_place(app: &App) -> Vec<Job> {
+    let Some(bench) = app.bench() else { return Vec::new() };
+    let Some(record) = bench.record.open() else { return Vec::new() };
+    let (identity, place) = (record.identity().clone(), bench.place(app.focus.name()));
+    vec![Job::Keep { identity, place }]
+}
+
+/// Leaves, once everything is written.
+pub fn leave(app: &mut App) -> Vec<Job> {
+    app.leaving = true;
+    leave_if_written(app);
+    if app.ended.is_none() && !matches!(app.overlay, Overlay::LeaveAnyway) {
+        app.say(format!("writing {} decisions…", app.pending()));
+    }
+    Vec::new()
+}
+
+/// Leaves at once.
+pub fn leave_anyway(app: &mut App) -> Vec<Job> {
+    app.ended = Some(0);
+    Vec::new()
+}
+
+fn leave_if_written(app: &mut App) {
+    if app.pending() == 0 {
+        app.ended = Some(0);
+    } else if app.write_failure().is_some() {
+        app.overlay = Overlay::LeaveAnyway;
+    }
+}
+
+/// Hears what the ledgers' writers have to say.
+pub fn ledger_moved(app: &mut App) -> Vec<Job> {
+    let mut moved = false;
+    for record in app.records_mut() {
+        moved |= record.listen();
+    }
+    if !moved {
+        return Vec::new();
+    }
+    app.changed = true;
+    app.left.retain(|record| record.pending() > 0);
+    if let Some(why) = app.write_failure() {
+        app.message = (why.to_owned(), Tone::Bad);
+    }
+    if app.leaving {
+        leave_if_written(app);
+    }
+    Vec::new()
+}

@@ -1,0 +1,142 @@
+//! What an event does to the state, and which jobs follow from it.
+
+use super::app::App;
+use super::event::{Event, Input, Mouse};
+use super::jobs::Job;
+use super::key::{Code, Key};
+use super::keys::{self, Action};
+use super::overlay::Overlay;
+use super::panes::Pane;
+use super::{answers, deciding, looking, moving, prompts, turning};
+
+/// Changes the state by an event and names the jobs to be started.
+pub fn update(app: &mut App, event: Event) -> Vec<Job> {
+    match event {
+        Event::Input(Input::Key(key)) => press(app, key),
+        Event::Input(Input::Paste(text)) => prompts::paste(app, &text),
+        Event::Input(Input::Mouse(mouse)) => click(app, mouse),
+        Event::Answer(answer) => answers::take(app, answer),
+        Event::LedgerMoved => turning::ledger_moved(app),
+        Event::Suspend => {
+            app.suspend = true;
+            Vec::new()
+        }
+        Event::Resumed => {
+            app.renew = true;
+            Vec::new()
+        }
+        Event::Resized => Vec::new(),
+        Event::End(ending) => {
+            app.end(ending);
+            Vec::new()
+        }
+    }
+}
+
+fn press(app: &mut App, key: Key) -> Vec<Job> {
+    if let Some(bench) = app.bench_mut() {
+        bench.touched = true;
+    }
+    match app.overlay {
+        Overlay::None => {}
+        _ => return prompts::press(app, key),
+    }
+    match keys::action_of(key) {
+        Some(action) => act(app, action),
+        None => {
+            app.say(format!("no key {key}; ? shows the keys"));
+            Vec::new()
+        }
+    }
+}
+
+/// Does what an action says.
+pub fn act(app: &mut App, action: Action) -> Vec<Job> {
+    use Action as A;
+    match action {
+        A::Up | A::Down | A::Left | A::Right | A::PageUp | A::PageDown => moving::step(app, action),
+        A::RowStart | A::RowEnd | A::First | A::Last => moving::step(app, action),
+        A::NextGranule | A::PreviousGranule | A::NextUnsigned | A::Open => {
+            turning::turn(app, action)
+        }
+        A::NextLayer | A::PreviousLayer | A::ChannelLayer | A::CycleRange => {
+            looking::layer(app, action)
+        }
+        A::FieldIn | A::FieldOut => looking::field(app, action),
+        A::ChannelUp | A::ChannelDown | A::ChannelFarUp | A::ChannelFarDown | A::SwitchQuantity => {
+            looking::trace(app, action)
+        }
+        A::ZoomIn | A::ZoomOut | A::PanLeft | A::PanRight | A::WholeSpectrum => {
+            looking::trace(app, action)
+        }
+        A::Pin | A::Unpin => looking::pins(app, action),
+        A::Flag | A::FlagAgain | A::Withdraw | A::Assess | A::Box | A::Undo | A::Redo => {
+            deciding::decide(app, action)
+        }
+        A::SignOff | A::Reopen => deciding::decide(app, action),
+        A::Export => deciding::export(app, None),
+        A::AskLayer | A::AskChannel | A::Side | A::Comment | A::SetAside | A::Command => {
+            prompts::open(app, action)
+        }
+        A::Help | A::Problems => prompts::open(app, action),
+        A::NextPane | A::PreviousPane => focus(app, action == A::NextPane),
+        A::Maximise => {
+            app.zoomed = app.zoomed.is_none().then_some(app.focus);
+            Vec::new()
+        }
+        A::Mouse => {
+            app.mouse = !app.mouse;
+            app.say(if app.mouse {
+                "the mouse moves the cursor; m gives it back to the terminal"
+            } else {
+                "the mouse is the terminal's"
+            });
+            Vec::new()
+        }
+        A::Redraw => {
+            app.redraw = true;
+            Vec::new()
+        }
+        A::Suspend => {
+            super::signals::ask_for_stop();
+            Vec::new()
+        }
+        A::Cancel => cancel(app),
+        A::Quit => turning::leave(app),
+    }
+}
+
+fn focus(app: &mut App, forward: bool) -> Vec<Job> {
+    app.focus = app.focus.step(forward);
+    if app.zoomed.is_some() {
+        app.zoomed = Some(app.focus);
+    }
+    if app.focus == Pane::Tray {
+        app.tray_cursor = app.current_entry().unwrap_or(0);
+    }
+    Vec::new()
+}
+
+/// Esc lets go of one thing at a time: selection, zoomed pane, then the message.
+fn cancel(app: &mut App) -> Vec<Job> {
+    let dropped = app.bench_mut().is_some_and(super::bench::Bench::drop_selection);
+    if app.leaving {
+        app.leaving = false;
+        app.say("stays");
+    } else if !dropped && app.zoomed.take().is_none() {
+        app.say("");
+    }
+    Vec::new()
+}
+
+fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
+    if !app.mouse || !matches!(app.overlay, Overlay::None) {
+        return Vec::new();
+    }
+    moving::click(app, mouse)
+}
+
+/// True for the keys that answer a yes-or-no question.
+pub fn is_yes(key: Key) -> bool {
+    matches!(key.code, Code::Char('y' | 'Y'))
+}

@@ -1,0 +1,169 @@
+//! What lies over the panes, drawn.
+
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+
+use crate::ui::app::App;
+use crate::ui::overlay::{FlagPrompt, LinePrompt, Overlay, Purpose};
+use crate::ui::panes::command::{self, CommandView, Completion};
+use crate::ui::panes::help::{self, HelpView};
+use crate::ui::panes::messages::{self, MessagesView};
+use crate::ui::panes::prompt::{self, FlagChoice, PromptView};
+
+/// Draws the overlay over the screen; prompts of one line go to the command line.
+pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Buffer) {
+    let theme = &app.theme;
+    match &app.overlay {
+        Overlay::None => {}
+        Overlay::Help(scroll) => {
+            let groups = super::help_groups();
+            let view = HelpView { title: "Keys and commands", groups: &groups, scroll: *scroll };
+            help::draw(&view, theme, screen, buffer);
+        }
+        Overlay::Problems(scroll) => {
+            let rows = super::problem_rows(app);
+            let view = MessagesView {
+                title: "Problems and guesses",
+                rows: &rows,
+                scroll: *scroll,
+                empty: "nothing was missing, guessed or odd",
+            };
+            messages::draw(&view, theme, screen, buffer);
+        }
+        Overlay::Line(prompt) => draw_line(app, prompt, screen, command_line, buffer),
+        Overlay::Flags(prompt) => draw_flags(app, prompt, screen, buffer),
+        Overlay::SignOff => {
+            let lines = sign_off_lines(app);
+            let view =
+                PromptView::YesNo { title: "Sign off: was the rest looked at?", lines: &lines };
+            prompt::draw(&view, theme, screen, buffer);
+        }
+        Overlay::LeaveAnyway => {
+            let lines = leave_lines(app);
+            let view = PromptView::YesNo { title: "Leave all the same?", lines: &lines };
+            prompt::draw(&view, theme, screen, buffer);
+        }
+    }
+}
+
+fn draw_line(
+    app: &App,
+    prompt: &LinePrompt,
+    screen: Rect,
+    command_line: Rect,
+    buffer: &mut Buffer,
+) {
+    let (text, cursor) = (prompt.line.text(), prompt.line.before_cursor().len());
+    let lead = match &prompt.purpose {
+        Purpose::Command => ":".to_owned(),
+        Purpose::Side => match app.bench() {
+            Some(bench) => format!("{} ", bench.layer.text),
+            None => String::new(),
+        },
+        Purpose::Reason(order) => {
+            let title = format!("Why {} at {}?", order.flag, order.selection.words);
+            return draw_text(
+                app,
+                &title,
+                prompt,
+                "Enter without words gives no reason",
+                screen,
+                buffer,
+            );
+        }
+        Purpose::Aside => {
+            return draw_text(app, "Set aside: why?", prompt, "a reason is needed", screen, buffer);
+        }
+        Purpose::Comment(selection) => {
+            let title = format!("Remark on {}", selection.words);
+            return draw_text(app, &title, prompt, "kept in the ledger", screen, buffer);
+        }
+    };
+    let completions: Vec<Completion> = prompt
+        .completions
+        .iter()
+        .map(|text| Completion { text: text.clone(), help: String::new() })
+        .collect();
+    let view = CommandView {
+        lead: &lead,
+        text,
+        cursor,
+        completions: &completions,
+        chosen: prompt.chosen,
+        problem: &prompt.problem,
+    };
+    command::draw(&view, &app.theme, command_line, buffer);
+}
+
+fn draw_text(
+    app: &App,
+    title: &str,
+    prompt: &LinePrompt,
+    hint: &str,
+    screen: Rect,
+    buffer: &mut Buffer,
+) {
+    let (text, cursor) = (prompt.line.text(), prompt.line.before_cursor().len());
+    let view = PromptView::Text { title, text, cursor, hint };
+    prompt::draw(&view, &app.theme, screen, buffer);
+}
+
+fn draw_flags(app: &App, flags: &FlagPrompt, screen: Rect, buffer: &mut Buffer) {
+    let vocabulary = &app.outside.campaign.settings().vocabulary;
+    let choices: Vec<FlagChoice> = flags
+        .flags
+        .iter()
+        .filter_map(|name| vocabulary.by_name(name))
+        .map(|kind| FlagChoice {
+            key: kind.key,
+            glyph: kind.glyph,
+            tint: kind.bit,
+            name: kind.name.clone(),
+            meaning: kind.meaning.clone(),
+        })
+        .collect();
+    let verb = if flags.give { "Flag" } else { "Withdraw from" };
+    let reason = if flags.with_reason { ", with a reason" } else { " (Tab: with a reason)" };
+    let title = format!("{verb} {}{reason}", flags.selection.words);
+    let view = PromptView::Flags { title: &title, choices: &choices, cursor: flags.cursor };
+    prompt::draw(&view, &app.theme, screen, buffer);
+}
+
+fn sign_off_lines(app: &App) -> Vec<String> {
+    let Some(record) = app.bench().and_then(|bench| bench.record.open()) else {
+        return Vec::new();
+    };
+    let counts = record.counts();
+    vec![
+        format!(
+            "{} footprints: {} flagged, {} no flag",
+            counts.footprints, counts.flagged, counts.no_flag
+        ),
+        format!("{} not assessed", counts.not_assessed),
+        "y: those were looked at and may be used".to_owned(),
+        "n: those stay not assessed, and are not used".to_owned(),
+        "Esc: do not sign off".to_owned(),
+    ]
+}
+
+fn leave_lines(app: &App) -> Vec<String> {
+    let mut lines = vec![format!("{} decisions could not be written:", app.pending())];
+    let why = app.write_failure().unwrap_or("the disk does not answer");
+    lines.extend(wrapped(why, 70));
+    lines.push("y: leave and lose them   n: stay   r: try again".to_owned());
+    lines
+}
+
+fn wrapped(text: &str, width: usize) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for word in text.split_whitespace() {
+        match lines.last_mut() {
+            Some(line) if line.len() + 1 + word.len() <= width => {
+                line.push(' ');
+                line.push_str(word);
+            }
+            _ => lines.push(word.to_owned()),
+        }
+    }
+    lines
+}

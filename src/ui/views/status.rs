@@ -1,0 +1,97 @@
+//! The status line and the line of hints.
+
+use crate::flags::GranuleState;
+use crate::ui::app::App;
+use crate::ui::bench::{Bench, RecordState};
+use crate::ui::colour::Tone;
+use crate::ui::keys::{Action, hint_key};
+use crate::ui::overlay::{LinePrompt, Overlay, Purpose};
+use crate::ui::panes::Pane;
+
+/// Short facts at the right of the status line, the most important first.
+pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
+    let mut facts = Vec::new();
+    match (app.pending(), app.write_failure()) {
+        (0, _) => {}
+        (pending, Some(_)) => facts.push((format!("{pending} NOT WRITTEN"), Tone::Bad)),
+        (pending, None) => facts.push((format!("{pending} pending"), Tone::Warning)),
+    }
+    let Some(bench) = app.bench() else { return facts };
+    if let RecordState::Open(record) = &bench.record {
+        if app.pending() == 0 && record.decisions().iter().any(|one| one.by_person()) {
+            facts.push(("kept".to_owned(), Tone::Good));
+        }
+        let counts = record.counts();
+        facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
+        facts.push((format!("{} no flag", counts.no_flag), Tone::Plain));
+        facts.push((format!("{} not assessed", counts.not_assessed), Tone::Plain));
+        let state = record.state().granule;
+        let tone = if state == GranuleState::SignedOff { Tone::Good } else { Tone::Faint };
+        facts.push((state.name().to_owned(), tone));
+    }
+    if let Some(fact) = filling(bench) {
+        facts.push(fact);
+    }
+    facts
+}
+
+fn filling(bench: &Bench) -> Option<(String, Tone)> {
+    if bench.filling.problem.is_some() {
+        return Some(("spectra incomplete".to_owned(), Tone::Bad));
+    }
+    let percent = (bench.filling.share * 100.0).floor();
+    (!bench.filling.done).then(|| (format!("reading {percent:.0} %"), Tone::Faint))
+}
+
+/// Keys worth knowing at this moment: (key, what it does).
+pub fn hints(app: &App) -> Vec<(String, &'static str)> {
+    let selecting = app.bench().is_some_and(|bench| bench.anchor.is_some() || bench.side.is_some());
+    let actions: &[(Action, &'static str)] = if selecting {
+        &[
+            (Action::Flag, "flag"),
+            (Action::Withdraw, "withdraw"),
+            (Action::Assess, "looked at"),
+            (Action::Cancel, "let go"),
+        ]
+    } else if app.focus == Pane::Tray {
+        &[
+            (Action::Open, "open"),
+            (Action::Down, "down"),
+            (Action::Up, "up"),
+            (Action::NextPane, "pane"),
+            (Action::Help, "help"),
+            (Action::Quit, "leave"),
+        ]
+    } else {
+        &[
+            (Action::Help, "help"),
+            (Action::Command, "command"),
+            (Action::Flag, "flag"),
+            (Action::Box, "box"),
+            (Action::Side, "side"),
+            (Action::Undo, "undo"),
+            (Action::NextLayer, "layer"),
+            (Action::SignOff, "sign off"),
+            (Action::NextGranule, "next"),
+            (Action::NextPane, "pane"),
+            (Action::Quit, "leave"),
+        ]
+    };
+    actions.iter().map(|(action, does)| (hint_key(*action), *does)).collect()
+}
+
+/// While one side of a value is being typed: how many footprints lie there.
+pub fn side_preview(app: &App) -> Option<String> {
+    let Overlay::Line(LinePrompt { purpose: Purpose::Side, .. }) = &app.overlay else {
+        return None;
+    };
+    let bench = app.bench()?;
+    Some(match bench.side {
+        Some(side) => {
+            let count = bench.side_selection(side).footprints.len();
+            let all = bench.footprints();
+            format!("{count} of {all} footprints; Up and Down move the value, Enter goes on")
+        }
+        None => "type < or > and a value".to_owned(),
+    })
+}

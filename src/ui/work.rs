@@ -1,0 +1,139 @@
+//! What each job does, on whatever thread it runs.
+
+use std::path::{Path, PathBuf};
+use std::sync::Arc;
+use std::time::{Duration, Instant};
+
+use crate::flags::{FlagState, read_ledgers};
+use crate::granule::{GranuleError, VariableRole};
+use crate::review::{Record, Review};
+use crate::system::Cancel;
+use crate::tray::Standing;
+
+use super::app::Outside;
+use super::bench::Quality;
+use super::jobs::{Answer, Export, Job};
+use super::place;
+
+/// Progress is told no more often than this: each time the map is evaluated and drawn anew.
+const PROGRESS_PAUSE: Duration = Duration::from_millis(80);
+/// More variables on quality than this do not fit the Evidence.
+const MOST_QUALITY: usize = 16;
+
+/// Does a job and sends its answers.
+pub fn perform(job: &Job, outside: &Outside, send: &dyn Fn(Answer)) {
+    match job {
+        Job::Standing { entry, path } => {
+            send(Answer::Standing { entry: *entry, found: standing(path, outside) });
+        }
+        Job::Open { request, path } => {
+            let found = Review::open(&outside.reader, path, &outside.limits);
+            let found = found.map(Arc::new).map_err(in_words);
+            send(Answer::Opened { request: *request, found });
+        }
+        Job::Fill { request, review, cancel } => fill(*request, review, cancel, send),
+        Job::Record { request, review } => {
+            let found = record(review, outside);
+            send(Answer::Record { request: *request, found });
+        }
+        Job::Layer { request, review, text } => {
+            send(Answer::Layer { request: *request, found: review.layer(text) });
+        }
+        Job::Indices { request, review, texts } => {
+            let texts: Vec<&str> = texts.iter().map(String::as_str).collect();
+            send(Answer::Indices { request: *request, found: review.layers(&texts) });
+        }
+        Job::Quality { request, review } => {
+            send(Answer::Quality { request: *request, found: quality(review) });
+        }
+        Job::Spectrum { request, review, footprint } => {
+            let found = review.read_spectrum(*footprint).map_err(in_words);
+            send(Answer::Spectrum { request: *request, found });
+        }
+        Job::Keep { identity, place } => {
+            place::keep(&outside.campaign, identity, &outside.author.person, place);
+        }
+        Job::Export(export) => {
+            let found = export_mask(export, outside);
+            send(Answer::Exported { request: export.request, found });
+        }
+    }
+}
+
+/// The answer of a job that ended in a fault of the program.
+pub fn failed(job: &Job, why: &str) -> Option<Answer> {
+    let why = || why.to_owned();
+    Some(match job {
+        Job::Standing { entry, .. } => Answer::Standing { entry: *entry, found: Err(why()) },
+        Job::Open { request, .. } => Answer::Opened { request: *request, found: Err(why()) },
+        Job::Fill { request, .. } => Answer::Filled { request: *request, found: Err(why()) },
+        Job::Record { request, .. } => Answer::Record { request: *request, found: Err(why()) },
+        Job::Layer { request, .. } => Answer::Layer { request: *request, found: Err(why()) },
+        Job::Indices { request, texts, .. } => {
+            Answer::Indices { request: *request, found: texts.iter().map(|_| Err(why())).collect() }
+        }
+        Job::Quality { request, .. } => Answer::Quality { request: *request, found: Vec::new() },
+        Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
+        Job::Keep { .. } => return None,
+        Job::Export(export) => Answer::Exported { request: export.request, found: Err(why()) },
+    })
+}
+
+fn in_words(error: GranuleError) -> String {
+    error.to_string()
+}
+
+fn fill(request: u64, review: &Review, cancel: &Cancel, send: &dyn Fn(Answer)) {
+    let mut told = Instant::now();
+    let found = review.granule().fill(cancel, &mut |progress| {
+        if told.elapsed() >= PROGRESS_PAUSE && progress.done < progress.total {
+            told = Instant::now();
+            let share = progress.done as f64 / progress.total.max(1) as f64;
+            send(Answer::Filling { request, share });
+        }
+    });
+    match found {
+        // Whoever cancelled it does not wait for an answer.
+        Err(GranuleError::Cancelled) => {}
+        found => send(Answer::Filled { request, found: found.map_err(in_words) }),
+    }
+}
+
+fn record(
+    review: &Review,
+    outside: &Outside,
+) -> Result<(Box<Record>, Option<place::Place>), String> {
+    let identity = review.identify().map_err(in_words)?;
+    let place = place::read(&outside.campaign, &identity, &outside.author.person);
+    let now = (outside.clock)();
+    let record = Record::open(&outside.campaign, identity, &outside.author, &outside.program, now);
+    Ok((Box::new(record.map_err(|error| error.to_string())?), place))
+}
+
+fn quality(review: &Review) -> Vec<Quality> {
+    let granule = review.granule();
+    let all = granule.variables().iter().enumerate();
+    all.filter(|(_, variable)| variable.role == VariableRole::Quality)
+        .take(MOST_QUALITY)
+        .map(|(number, variable)| Quality {
+            variable: number,
+            values: granule.read_variable(&variable.name).map_err(in_words),
+        })
+        .collect()
+}
+
+/// What the ledgers say about a file.
+fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
+    let review = Review::open(&outside.reader, path, &outside.limits).map_err(in_words)?;
+    let identity = review.identify().map_err(in_words)?;
+    let decisions = read_ledgers(&outside.campaign, &identity).decisions;
+    let vocabulary = &outside.campaign.settings().vocabulary;
+    let footprints = review.granule().footprints().count();
+    let state = FlagState::replay(footprints, &decisions, vocabulary);
+    Ok(Standing { state: state.granule, counts: Some(state.counts(vocabulary)) })
+}
+
+fn export_mask(export: &Export, outside: &Outside) -> Result<PathBuf, String> {
+    let _ = (export, outside);
+    Err("not part of this version".to_owned())
+}
