@@ -4,12 +4,14 @@
 //!
 //! **Never** draws or prints.
 
+mod exporting;
 mod record;
 #[allow(clippy::module_inception)] // The room is named after the thing.
 mod review;
 mod spectrum;
 mod suggestions;
 
+pub use exporting::ExportedBy;
 pub use record::{Record, Refusal};
 pub use review::Review;
 pub use spectrum::{BandSpectrum, Spectrum};

@@ -227,15 +227,23 @@ fn spectrum(app: &mut App, request: u64, found: Result<Spectrum, String>) -> Vec
     Vec::new()
 }
 
-fn exported(app: &mut App, request: u64, found: Result<PathBuf, String>) -> Vec<Job> {
+fn exported(
+    app: &mut App,
+    request: u64,
+    found: Result<(PathBuf, Vec<String>), String>,
+) -> Vec<Job> {
     let Some(bench) = awaited(app, |bench| bench.awaited.export == request) else {
         return Vec::new();
     };
     bench.awaited.export = 0;
     app.message = match found {
-        Ok(path) => {
+        Ok((path, messages)) => {
             let path = crate::system::clean_text(&path.to_string_lossy());
-            (format!("exported to {path}"), Tone::Good)
+            let words = match messages.first() {
+                Some(message) => format!("exported to {path}: {message}"),
+                None => format!("exported to {path}"),
+            };
+            (words, Tone::Good)
         }
         Err(why) => (format!("not exported: {why}"), Tone::Bad),
     };

@@ -1,5 +1,6 @@
 //! The granule on the table, as the screen holds it.
 
+use std::path::PathBuf;
 use std::sync::Arc;
 
 use crate::flags::FootprintSet;
@@ -66,6 +67,8 @@ pub struct Bench {
     pub filling: Filling,
     /// The requests whose answers are waited for.
     pub awaited: Awaited,
+    /// An export that waits for the last decisions to be on the disk: into which folder.
+    pub export_waits: Option<PathBuf>,
     /// A key has changed what is on show, so that a kept place comes too late.
     pub touched: bool,
 }
@@ -203,6 +206,7 @@ impl Bench {
             field_zoom: 0,
             filling: Filling::default(),
             awaited: Awaited::default(),
+            export_waits: None,
             touched: false,
             review,
         }

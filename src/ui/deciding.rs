@@ -11,7 +11,7 @@ use crate::tray::Standing;
 
 use super::app::App;
 use super::bench::RecordState;
-use super::jobs::{Export, Job};
+use super::jobs::Job;
 use super::keys::{Action, hint_key};
 use super::looking::no_granule;
 use super::overlay::{FlagOrder, FlagPrompt, Overlay, Selection};
@@ -175,23 +175,30 @@ pub fn sign_off(app: &mut App, rest_looked_at: bool) -> Vec<Job> {
     })
 }
 
-/// Exports the mask of the granule on the table, into `folder` or the campaign's own.
+/// Exports the mask of the granule on the table, into `folder` or the campaign's own, as soon as
+/// the last decisions are on the disk: a mask is made from what the ledgers hold.
 pub fn export(app: &mut App, folder: Option<String>) -> Vec<Job> {
-    let request = app.request();
     let folder = folder.map_or_else(|| app.export_folder(), PathBuf::from);
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
-    let Some(record) = bench.record.open() else { return not_ready(app) };
-    let export = Export {
-        request,
-        review: Arc::clone(&bench.review),
-        identity: record.identity().clone(),
-        state: record.state().clone(),
-        decisions: record.decisions().to_vec(),
-        folder,
-    };
-    bench.awaited.export = request;
+    if bench.record.open().is_none() {
+        return not_ready(app);
+    }
+    bench.export_waits = Some(folder);
     app.say("exporting…");
-    vec![Job::Export(Box::new(export))]
+    export_if_kept(app)
+}
+
+/// The export that waits, if nothing is pending any more.
+pub fn export_if_kept(app: &mut App) -> Vec<Job> {
+    let request = app.request();
+    let inputs = app.tray.entries().iter().map(|entry| entry.path.clone()).collect();
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    if bench.record.open().is_none_or(|record| record.pending() > 0) {
+        return Vec::new();
+    }
+    let Some(folder) = bench.export_waits.take() else { return Vec::new() };
+    bench.awaited.export = request;
+    vec![Job::Export { request, review: Arc::clone(&bench.review), folder, inputs }]
 }
 
 /// A decision in a few words.

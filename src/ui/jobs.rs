@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 use std::sync::Arc;
 
-use crate::flags::{Decision, FlagState, GranuleIdentity};
+use crate::flags::GranuleIdentity;
 use crate::layers::Layer;
 use crate::review::{Record, Review, Spectrum};
 use crate::system::Cancel;
@@ -87,23 +87,16 @@ pub enum Job {
         place: Place,
     },
     /// Write the flag mask.
-    Export(Box<Export>),
-}
-
-/// What an export is made of.
-pub struct Export {
-    /// The request.
-    pub request: u64,
-    /// The granule.
-    pub review: Arc<Review>,
-    /// The granule by its content.
-    pub identity: GranuleIdentity,
-    /// The flags.
-    pub state: FlagState,
-    /// The decisions that they were folded from.
-    pub decisions: Vec<Decision>,
-    /// The folder to write into.
-    pub folder: PathBuf,
+    Export {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The folder to write into.
+        folder: PathBuf,
+        /// Files that must never be written to.
+        inputs: Vec<PathBuf>,
+    },
 }
 
 /// What a job found.
@@ -175,7 +168,7 @@ pub enum Answer {
     Exported {
         /// The request.
         request: u64,
-        /// Where.
-        found: Result<PathBuf, String>,
+        /// Where, and what has to be said about it.
+        found: Result<(PathBuf, Vec<String>), String>,
     },
 }

@@ -165,5 +165,5 @@ pub fn ledger_moved(app: &mut App) -> Vec<Job> {
     if app.leaving {
         leave_if_written(app);
     }
-    Vec::new()
+    super::deciding::export_if_kept(app)
 }

@@ -6,13 +6,13 @@ use std::time::{Duration, Instant};
 
 use crate::flags::{FlagState, read_ledgers};
 use crate::granule::{GranuleError, VariableRole};
-use crate::review::{Record, Review};
+use crate::review::{ExportedBy, Record, Review};
 use crate::system::Cancel;
 use crate::tray::Standing;
 
 use super::app::Outside;
 use super::bench::Quality;
-use super::jobs::{Answer, Export, Job};
+use super::jobs::{Answer, Job};
 use super::place;
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
@@ -53,9 +53,9 @@ pub fn perform(job: &Job, outside: &Outside, send: &dyn Fn(Answer)) {
         Job::Keep { identity, place } => {
             place::keep(&outside.campaign, identity, &outside.author.person, place);
         }
-        Job::Export(export) => {
-            let found = export_mask(export, outside);
-            send(Answer::Exported { request: export.request, found });
+        Job::Export { request, review, folder, inputs } => {
+            let found = export(review, folder, inputs, outside);
+            send(Answer::Exported { request: *request, found });
         }
     }
 }
@@ -75,7 +75,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Quality { request, .. } => Answer::Quality { request: *request, found: Vec::new() },
         Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
         Job::Keep { .. } => return None,
-        Job::Export(export) => Answer::Exported { request: export.request, found: Err(why()) },
+        Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
 }
 
@@ -133,7 +133,19 @@ fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
     Ok(Standing { state: state.granule, counts: Some(state.counts(vocabulary)) })
 }
 
-fn export_mask(export: &Export, outside: &Outside) -> Result<PathBuf, String> {
-    let _ = (export, outside);
-    Err("not part of this version".to_owned())
+fn export(
+    review: &Review,
+    folder: &Path,
+    inputs: &[PathBuf],
+    outside: &Outside,
+) -> Result<(PathBuf, Vec<String>), String> {
+    std::fs::create_dir_all(folder)
+        .map_err(|error| format!("the folder {} can't be made: {error}", folder.display()))?;
+    let by = ExportedBy {
+        program: outside.program.clone(),
+        person: outside.author.person.clone(),
+        now: (outside.clock)(),
+    };
+    let exported = review.export(&outside.campaign, &outside.reader, &by, folder, inputs);
+    exported.map(|done| (done.path, done.messages)).map_err(|error| error.to_string())
 }
