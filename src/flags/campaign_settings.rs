@@ -150,4 +150,13 @@ mod tests {
         let unknown = CampaignSettings::parse("colour = 'blue'").unwrap();
         assert_eq!(unknown.problems, ["unknown setting `colour` in campaign.toml"]);
     }
+
+    /// The document's example of a campaign's own flag is read as it stands.
+    #[test]
+    fn the_example_in_the_document_works() {
+        let document = include_str!("../../docs/flags.md");
+        let example = document.split("```toml\n").nth(1).unwrap().split("```").next().unwrap();
+        let settings = CampaignSettings::parse(example).unwrap();
+        assert_eq!(settings.vocabulary.by_name("sun_glint").unwrap().key, 'l');
+    }
 }

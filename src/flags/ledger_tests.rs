@@ -344,3 +344,21 @@ fn child_with_little_space() {
     assert_eq!(reading.problems.len(), 1, "the torn line is reported");
     assert_eq!(fixture.files().len(), 2);
 }
+
+/// The document's lines are read as they stand.
+#[test]
+fn the_lines_in_the_document_are_a_ledger() {
+    let document = include_str!("../../docs/flags.md");
+    let example = |number| document.split("```json\n").nth(number).unwrap().lines().next().unwrap();
+    let header = example(1).replace("<64 hexadecimal digits>", &granule().hash);
+    let fixture = Fixture::new();
+    std::fs::create_dir_all(fixture.folder()).unwrap();
+    let text = format!("{header}\n{}\n", example(2));
+    std::fs::write(fixture.folder().join("example.jsonl"), text).unwrap();
+    let reading = fixture.read();
+    assert_eq!(reading.problems, []);
+    let decision = &reading.decisions[0];
+    assert_eq!((decision.person.as_str(), decision.id.sequence), ("anna", 1));
+    assert_eq!(decision.act.footprints().unwrap().len(), 17);
+    assert_eq!(decision.why.as_deref(), Some("edge of the deck"));
+}

@@ -357,4 +357,31 @@ mod tests {
         assert!(refused(extension("two words", 17, 'Q', 'q')).contains("one word"));
         assert!(refused(extension("haze", 17, '\u{7}', 'q')).contains("printable"));
     }
+
+    /// The document's tables are this table.
+    #[test]
+    fn the_document_shows_the_vocabulary() {
+        let document = include_str!("../../docs/flags.md");
+        let rows: Vec<&str> = document.lines().filter(|line| is_flag_row(line)).collect();
+        let kinds = Vocabulary::released().kinds;
+        let expected: Vec<String> = kinds.iter().map(row).collect();
+        assert_eq!(rows, expected);
+    }
+
+    /// Flag rows begin with a name and a bit; other tables of the document do not.
+    fn is_flag_row(line: &str) -> bool {
+        let mut cells = line.split(" | ");
+        line.starts_with("| `") && cells.nth(1).is_some_and(|cell| cell.parse::<u8>().is_ok())
+    }
+
+    fn row(kind: &FlagKind) -> String {
+        let FlagKind { name, bit, glyph, key, meaning, .. } = kind;
+        let usable = match (kind.scope, kind.excludes) {
+            (Scope::Channel, _) => "",
+            (Scope::Footprint, true) => " no |",
+            (Scope::Footprint, false) => " yes |",
+        };
+        let mask = kind.mask();
+        format!("| `{name}` | {bit} | {mask} | `{glyph}` | `{key}` |{usable} {meaning} |")
+    }
 }
