@@ -206,8 +206,8 @@ mod tests {
                 80,
                 "─ Trace line 12, position 3: brightness temperature ─── 900.00 cm-1 · 290.00 K ─",
             ),
-            (60, "─ Trace line 12, position 3 ──────── 900.00 cm-1 · 290.00 K ─"),
-            (46, "─ Trace line 12, … ── 900.00 cm-1 · 290.00 K ─"),
+            (60, "─ Trace line 12, position 3 ─────── 900.00 cm-1 · 290.00 K ─"),
+            (46, "─ Trace line 12,… ─── 900.00 cm-1 · 290.00 K ─"),
         ] {
             let mut screen = Screen::new(width, 9);
             draw(&view, &THEME, screen.area(), &mut screen.buffer);
