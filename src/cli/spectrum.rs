@@ -8,9 +8,9 @@ use serde_json::{Map, Value};
 
 use super::Exit;
 use super::exit::UsageError;
+use super::inputs::{Reading, reader_program};
 use super::table::{cell, present, stream_error};
 use crate::granule::{Band, FootprintGrid, Granule};
-use crate::netcdf_files::{ReadLimits, ReaderProgram};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
@@ -25,6 +25,8 @@ pub struct Arguments {
     /// One JSON object in place of CSV.
     #[arg(long)]
     json: bool,
+    #[command(flatten)]
+    reading: Reading,
 }
 
 /// The spectrum of one band; missing values are NaN.
@@ -38,8 +40,8 @@ struct BandSpectrum {
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let position = indices(&arguments.at)?;
-    let program = ReaderProgram::new(std::env::current_exe()?);
-    let granule = Granule::open(&program, &arguments.file, &ReadLimits::default())?;
+    let limits = arguments.reading.limits();
+    let granule = Granule::open(&reader_program()?, &arguments.file, &limits)?;
     let footprint = footprint(granule.footprints(), &position)?;
     let bands = bands(&granule, footprint)?;
     let mut out = BufWriter::new(io::stdout().lock());

@@ -5,6 +5,7 @@ use std::path::{Path, PathBuf};
 
 use super::Exit;
 use super::exit::UsageError;
+use super::inputs::{Inputs, Reading, reader_program};
 use super::table::{Form, Heading, write_rows};
 use crate::granule::{Granule, ProblemKind};
 use crate::layers::{Expression, GranuleNames, Layer, LayerError, channels_needed, evaluate_all};
@@ -17,9 +18,8 @@ use crate::system::{Cancel, WriteError, clean_text, write_whole};
     radsieve tabulate granule.nc --layer 'bt(900)' --layer 'bt(900) - bt(1231)'\n  \
     radsieve tabulate *.nc --layer 'sd3(bt(900))' --json -o spread.jsonl")]
 pub struct Arguments {
-    /// Granules: files, folders, globs, or - for a list on standard input.
-    #[arg(required = true, value_name = "FILES")]
-    files: Vec<String>,
+    #[command(flatten)]
+    inputs: Inputs,
     /// A layer expression, one column each, as in 'bt(900) - bt(831)'.
     #[arg(long = "layer", value_name = "EXPR", required = true, allow_hyphen_values = true)]
     layers: Vec<String>,
@@ -32,6 +32,8 @@ pub struct Arguments {
     /// Say nothing about what was noticed in the files.
     #[arg(short, long)]
     quiet: bool,
+    #[command(flatten)]
+    reading: Reading,
 }
 
 /// What the arguments mean.
@@ -41,6 +43,7 @@ struct Plan {
     form: Form,
     quiet: bool,
     program: ReaderProgram,
+    limits: ReadLimits,
 }
 
 /// How the files fared.
@@ -81,10 +84,11 @@ fn plan(arguments: &Arguments) -> anyhow::Result<Plan> {
     };
     Ok(Plan {
         layers: arguments.layers.iter().map(read).collect::<Result<_, _>>()?,
-        files: arguments.files.iter().map(PathBuf::from).collect(),
+        files: arguments.inputs.files()?,
         form: if arguments.json { Form::JsonLines } else { Form::Csv },
         quiet: arguments.quiet,
-        program: ReaderProgram::new(std::env::current_exe()?),
+        program: reader_program()?,
+        limits: arguments.reading.limits(),
     })
 }
 
@@ -133,7 +137,7 @@ fn one_file(
     heading: &mut Option<Heading>,
     out: &mut dyn Write,
 ) -> Result<(), Failure> {
-    let granule = Granule::open(&plan.program, file, &ReadLimits::default())
+    let granule = Granule::open(&plan.program, file, &plan.limits)
         .map_err(|error| Failure::File(error.into()))?;
     if let Some(reason) = heading.as_ref().and_then(|heading| heading.refuses(&granule)) {
         return Err(Failure::File(anyhow::anyhow!("{}: {reason}", granule.name())));

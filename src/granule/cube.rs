@@ -169,34 +169,45 @@ impl Cube {
     /// One channel's values over all footprints, into `out` (of [`Self::footprints`] values):
     /// mW m-2 sr-1 (cm-1)-1 or K. Missing values and what is not here yet are NaN.
     pub fn channel(&self, band: usize, channel: usize, out: &mut [f64]) -> Presence {
-        self.channel_over(band, channel, 0..self.footprints, out)
+        self.channels_over(band, &[channel], 0..self.footprints, out)
     }
 
-    /// The same over some footprints only; `out` is as long as their range.
-    pub fn channel_over(
+    /// Some channels' values over some footprints, into `out`: all of the first channel, then all of
+    /// the second, and so on; otherwise as [`Self::channel`]. Each spectrum is gone through once.
+    pub fn channels_over(
         &self,
         band: usize,
-        channel: usize,
+        channels: &[usize],
         footprints: Range<usize>,
         out: &mut [f64],
     ) -> Presence {
         let mut presence = Presence::Here;
-        let (mut at, mut out) = (footprints.start, out);
-        while at < footprints.end && !out.is_empty() {
+        let mut at = footprints.start;
+        while at < footprints.end {
             let slab = self.slab_of(band, at);
             let held = self.footprints_of(band, slab);
-            let count = (held.end.min(footprints.end) - at).min(out.len());
-            let (part, rest) = out.split_at_mut(count);
+            let part = at..held.end.min(footprints.end);
+            let place = part.start - footprints.start..part.end - footprints.start;
             match self.bands[band].slabs[slab].get() {
                 Some(samples) => {
-                    self.bands[band].decode_channel(samples, at - held.start, channel, part);
+                    let first = part.start - held.start;
+                    self.bands[band].decode_channels(
+                        samples,
+                        first,
+                        channels,
+                        place,
+                        footprints.len(),
+                        out,
+                    );
                 }
                 None => {
-                    part.fill(f64::NAN);
+                    for out in out.chunks_mut(footprints.len()) {
+                        out[place.clone()].fill(f64::NAN);
+                    }
                     presence = Presence::NotYet;
                 }
             }
-            (at, out) = (at + count, rest);
+            at = part.end;
         }
         presence
     }
@@ -246,17 +257,33 @@ impl BandCube {
         );
     }
 
-    /// One channel from the slab's footprint `first` on.
-    fn decode_channel(&self, samples: &Samples, first: usize, channel: usize, out: &mut [f64]) {
+    /// Some channels from the slab's footprint `first` on, into the `place` of each channel's
+    /// `length` values.
+    fn decode_channels(
+        &self,
+        samples: &Samples,
+        first: usize,
+        channels: &[usize],
+        place: Range<usize>,
+        length: usize,
+        out: &mut [f64],
+    ) {
         with_values!(
             samples,
             values => {
-                let column = values[first * self.channels + channel..].iter().step_by(self.channels);
-                for (out, &value) in out.iter_mut().zip(column) {
-                    *out = self.scale.apply(channel, self.decoder.decode(value as f64));
+                let spectra = values[first * self.channels..].chunks_exact(self.channels);
+                for (at, spectrum) in place.zip(spectra) {
+                    for (row, &channel) in channels.iter().enumerate() {
+                        let value = self.decoder.decode(spectrum[channel] as f64);
+                        out[row * length + at] = self.scale.apply(channel, value);
+                    }
                 }
             },
-            _strings => out.fill(f64::NAN)
+            _strings => {
+                for row in 0..channels.len() {
+                    out[row * length..][place.clone()].fill(f64::NAN);
+                }
+            }
         );
     }
 }

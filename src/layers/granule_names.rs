@@ -88,12 +88,14 @@ impl<'g> GranuleNames<'g> {
         }
     }
 
+    /// What the file stores, band by band: each spectrum is gone through once.
     fn values(&self, channels: &[Channel], footprints: &Range<usize>, out: &mut [f64]) {
-        if footprints.is_empty() {
-            return;
-        }
-        for (channel, out) in channels.iter().zip(out.chunks_mut(footprints.len())) {
-            self.cube.channel_over(channel.band, channel.index, footprints.clone(), out);
+        let mut out = out;
+        for of_band in channels.chunk_by(|one, next| one.band == next.band) {
+            let indices: Vec<usize> = of_band.iter().map(|channel| channel.index).collect();
+            let (part, rest) = out.split_at_mut(of_band.len() * footprints.len());
+            self.cube.channels_over(of_band[0].band, &indices, footprints.clone(), part);
+            out = rest;
         }
     }
 }

@@ -5,6 +5,7 @@
 mod describe;
 mod export;
 mod hostile;
+mod layers;
 mod manual;
 mod plain_granule;
 mod planck;

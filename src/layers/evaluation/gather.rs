@@ -13,6 +13,9 @@ use crate::spectral::{NoTemperature, brightness_temperature};
 /// Numbers that one block holds at the most, about 2 MB.
 const BLOCK_NUMBERS: usize = 1 << 18;
 
+/// Fewer numbers than this are gathered before other threads have woken up.
+const PARALLEL_FROM: usize = 1 << 20;
+
 /// A column, and what happened on the way.
 #[derive(Debug, Clone, Default, PartialEq)]
 pub struct Column {
@@ -38,10 +41,13 @@ pub fn gather(leaves: &[Leaf], names: &dyn Names) -> Vec<Column> {
     let footprints = names.footprints();
     let block = (BLOCK_NUMBERS / wanted.len().max(1)).clamp(64, 4096);
     let starts: Vec<usize> = (0..footprints).step_by(block).collect();
-    let blocks: Vec<Vec<Column>> = starts
-        .into_par_iter()
-        .map(|start| wanted.block(leaves, names, start..(start + block).min(footprints)))
-        .collect();
+    let gathered =
+        |start: usize| wanted.block(leaves, names, start..(start + block).min(footprints));
+    let blocks: Vec<Vec<Column>> = if wanted.len() * footprints < PARALLEL_FROM {
+        starts.into_iter().map(gathered).collect()
+    } else {
+        starts.into_par_iter().map(gathered).collect()
+    };
     let mut columns: Vec<Column> = vec![Column::default(); leaves.len()];
     for block in &blocks {
         for (column, part) in columns.iter_mut().zip(block) {

@@ -8,6 +8,9 @@ use crate::spectral::planck;
 /// Footprints that are worked on together; a few columns of them fit into the nearest cache.
 const BLOCK: usize = 512;
 
+/// Fewer footprints than this are done before other threads have woken up.
+const PARALLEL_FROM: usize = 1 << 16;
+
 /// Where a column comes from.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Source {
@@ -54,7 +57,7 @@ impl Program {
         column: &(dyn Fn(Source) -> &'c [f64] + Sync),
     ) -> Vec<f64> {
         let mut out = vec![f64::NAN; footprints];
-        out.par_chunks_mut(BLOCK).with_min_len(4).enumerate().for_each(|(block, out)| {
+        let run_block = |(block, out): (usize, &mut [f64])| {
             let mut stack: Vec<Vec<f64>> = Vec::new();
             for operation in &self.0 {
                 apply(*operation, &mut stack, block * BLOCK, out.len(), column);
@@ -62,7 +65,12 @@ impl Program {
             if let Some(top) = stack.pop() {
                 out.copy_from_slice(&top);
             }
-        });
+        };
+        if footprints < PARALLEL_FROM {
+            out.chunks_mut(BLOCK).enumerate().for_each(run_block);
+        } else {
+            out.par_chunks_mut(BLOCK).enumerate().for_each(run_block);
+        }
         out
     }
 }

@@ -11,5 +11,5 @@ mod statistics;
 #[cfg(test)]
 mod ground_tests;
 
-pub use lists::{MOST, Neighbours};
+pub use lists::Neighbours;
 pub use statistics::neighbourhood;

@@ -2,34 +2,40 @@
 
 use rayon::prelude::*;
 
-use super::lists::Neighbours;
+use super::lists::{MOST, Neighbours};
 use crate::layers::syntax::Statistic;
 
 /// A neighbourhood needs this many valid values, its own among them.
 pub const FEWEST: usize = 5;
 
+/// Fewer footprints than this are done before other threads have woken up.
+const PARALLEL_FROM: usize = 1 << 16;
+
 /// The statistic of `values` over each neighbourhood. Missing where the footprint's own value is
 /// missing, and where fewer than [`FEWEST`] values are there.
 pub fn neighbourhood(statistic: Statistic, values: &[f64], neighbours: &Neighbours) -> Vec<f64> {
-    (0..values.len())
-        .into_par_iter()
-        .with_min_len(512)
-        .map(|footprint| {
-            if values[footprint].is_nan() {
-                return f64::NAN;
-            }
-            let mut present = [0.0; super::MOST];
-            let mut count = 0;
-            for &beside in neighbours.of(footprint) {
-                let value = values.get(beside as usize).copied().unwrap_or(f64::NAN);
-                if !value.is_nan() {
-                    present[count] = value;
-                    count += 1;
-                }
-            }
-            if count < FEWEST { f64::NAN } else { of(statistic, &present[..count]) }
-        })
-        .collect()
+    let at = |footprint: usize| around(statistic, values, neighbours, footprint);
+    if values.len() < PARALLEL_FROM {
+        (0..values.len()).map(at).collect()
+    } else {
+        (0..values.len()).into_par_iter().map(at).collect()
+    }
+}
+
+fn around(statistic: Statistic, values: &[f64], neighbours: &Neighbours, footprint: usize) -> f64 {
+    if values[footprint].is_nan() {
+        return f64::NAN;
+    }
+    let mut present = [0.0; MOST];
+    let mut count = 0;
+    for &beside in neighbours.of(footprint) {
+        let value = values.get(beside as usize).copied().unwrap_or(f64::NAN);
+        if !value.is_nan() {
+            present[count] = value;
+            count += 1;
+        }
+    }
+    if count < FEWEST { f64::NAN } else { of(statistic, &present[..count]) }
 }
 
 fn of(statistic: Statistic, values: &[f64]) -> f64 {
