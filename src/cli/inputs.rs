@@ -10,7 +10,8 @@ use std::time::Duration;
 use anyhow::Context;
 
 use super::exit::UsageError;
-use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use super::natural_order::sort_naturally;
+use crate::netcdf_files::ReadLimits;
 
 /// Endings of the files that are taken out of a folder.
 const ENDINGS: [&str; 5] = ["nc", "nc4", "cdf", "h5", "hdf5"];
@@ -46,13 +47,6 @@ impl Reading {
         let defaults = ReadLimits::default();
         ReadLimits { per_request: self.reader_limit.unwrap_or(defaults.per_request), ..defaults }
     }
-}
-
-/// This program, which is started again as the reader of a file.
-pub fn reader_program() -> anyhow::Result<ReaderProgram> {
-    let program =
-        std::env::current_exe().context("cannot find this program to start its reader")?;
-    Ok(ReaderProgram::new(program))
 }
 
 impl Inputs {
@@ -182,31 +176,6 @@ fn matches_of(pattern: &Path) -> anyhow::Result<Vec<PathBuf>> {
     }
     sort_naturally(&mut found);
     Ok(found)
-}
-
-/// Numbers inside of names count as numbers.
-fn sort_naturally(paths: &mut [PathBuf]) {
-    paths.sort_by_cached_key(|path| (natural_key(path), path.clone()));
-}
-
-#[derive(Debug, PartialEq, Eq, PartialOrd, Ord)]
-enum Part {
-    /// Digits without leading zeros; a longer number is a larger one.
-    Number(usize, Vec<u8>),
-    Text(Vec<u8>),
-}
-
-fn natural_key(path: &Path) -> Vec<Part> {
-    let bytes = path.as_os_str().as_bytes();
-    let runs = bytes.chunk_by(|one, next| one.is_ascii_digit() == next.is_ascii_digit());
-    runs.map(|run| match run.first().is_some_and(u8::is_ascii_digit) {
-        true => {
-            let zeros = run.iter().take_while(|&&digit| digit == b'0').count();
-            Part::Number(run.len() - zeros, run[zeros..].to_vec())
-        }
-        false => Part::Text(run.to_vec()),
-    })
-    .collect()
 }
 
 #[cfg(test)]

@@ -12,6 +12,7 @@ mod exit;
 mod export;
 mod inputs;
 mod manual;
+mod natural_order;
 mod planck;
 mod reader;
 mod review;

@@ -243,6 +243,7 @@ impl Cube {
 }
 
 impl BandCube {
+    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     fn decode_spectrum(&self, samples: &Samples, begin: usize, out: &mut Vec<f64>) {
         out.reserve(self.channels);
         with_values!(
@@ -259,6 +260,7 @@ impl BandCube {
 
     /// Some channels from the slab's footprint `first` on, into the `place` of each channel's
     /// `length` values.
+    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     fn decode_channels(
         &self,
         samples: &Samples,

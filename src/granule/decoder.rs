@@ -76,6 +76,7 @@ impl Decoder {
     }
 
     /// All values as numbers; strings are missing.
+    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     pub fn decode_all(&self, samples: &Samples) -> Vec<f64> {
         with_values!(
             samples,
@@ -85,6 +86,7 @@ impl Decoder {
     }
 
     /// How many values are taken as missing only because they are -900 or below.
+    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     pub fn undeclared_fills(&self, samples: &Samples) -> usize {
         if !self.undeclared_fill {
             return 0;

@@ -3,6 +3,7 @@
 use super::decoder::Decoder;
 use super::footprint_dimensions::FootprintDimensions;
 use super::footprints::FootprintGrid;
+use super::geolocation_fields::{Evidence, FIELDS, Field, Kind, evidence};
 use super::problem::Problem;
 use super::time::{TimeScale, TimeUnit};
 use crate::netcdf_files::{FileReader, Variable};
@@ -61,96 +62,6 @@ pub struct GeolocationSource {
     pub(super) place: usize,
 }
 
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-enum Kind {
-    Latitude,
-    Longitude,
-    Angle,
-    Share,
-    Time,
-}
-
-/// What is known about a field: how files call it, and what its absence costs.
-struct Field {
-    name: &'static str,
-    kind: Kind,
-    standard_names: &'static [&'static str],
-    /// Names that producers use, compared in lower case without underscores.
-    usual_names: &'static [&'static str],
-    cost: &'static str,
-}
-
-const FIELDS: [Field; 8] = [
-    Field {
-        name: "lat",
-        kind: Kind::Latitude,
-        standard_names: &["latitude"],
-        usual_names: &["lat", "latitude"],
-        cost: "the map is drawn by array place, and neighbours are those in the array",
-    },
-    Field {
-        name: "lon",
-        kind: Kind::Longitude,
-        standard_names: &["longitude"],
-        usual_names: &["lon", "longitude", "long"],
-        cost: "the map is drawn by array place, and neighbours are those in the array",
-    },
-    Field {
-        name: "view_zenith",
-        kind: Kind::Angle,
-        standard_names: &["sensor_zenith_angle", "platform_zenith_angle"],
-        usual_names: &[
-            "satzen",
-            "viewzenith",
-            "satellitezenith",
-            "sensorzenith",
-            "satellitezenithangle",
-        ],
-        cost: "tests that allow for the slant of the view cannot run",
-    },
-    Field {
-        name: "view_azimuth",
-        kind: Kind::Angle,
-        standard_names: &["sensor_azimuth_angle", "platform_azimuth_angle"],
-        usual_names: &[
-            "satazi",
-            "viewazimuth",
-            "satelliteazimuth",
-            "sensorazimuth",
-            "satelliteazimuthangle",
-        ],
-        cost: "sun glint cannot be told",
-    },
-    Field {
-        name: "solar_zenith",
-        kind: Kind::Angle,
-        standard_names: &["solar_zenith_angle"],
-        usual_names: &["solzen", "solarzenith", "sunzenith", "solarzenithangle"],
-        cost: "day and night cannot be told apart",
-    },
-    Field {
-        name: "solar_azimuth",
-        kind: Kind::Angle,
-        standard_names: &["solar_azimuth_angle"],
-        usual_names: &["solazi", "solarazimuth", "sunazimuth", "solarazimuthangle"],
-        cost: "sun glint cannot be told",
-    },
-    Field {
-        name: "land",
-        kind: Kind::Share,
-        standard_names: &["land_area_fraction", "land_binary_mask"],
-        usual_names: &["landfrac", "landfraction", "landmask", "land"],
-        cost: "land and sea cannot be told apart",
-    },
-    Field {
-        name: "time",
-        kind: Kind::Time,
-        standard_names: &["time"],
-        usual_names: &["time", "obstime", "observationtime"],
-        cost: "the time of a footprint is not shown",
-    },
-];
-
 /// Finds and reads all fields that the file has; the others become problems.
 pub fn read(
     reader: &FileReader,
@@ -190,14 +101,6 @@ pub fn read(
     found
 }
 
-/// What speaks for a variable being a field; the earlier the surer.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
-enum Evidence {
-    StandardName,
-    Units,
-    Name,
-}
-
 fn find(
     reader: &FileReader,
     dimensions: &FootprintDimensions,
@@ -212,32 +115,6 @@ fn find(
         Some(((evidence, !spread.is_full(grid), spread.guessed, place), (place, evidence)))
     });
     candidates.min_by_key(|(order, _)| *order).map(|(_, found)| found)
-}
-
-fn evidence(field: &Field, variable: &Variable) -> Option<Evidence> {
-    let standard_name = variable.text("standard_name").unwrap_or_default();
-    if field.standard_names.contains(&standard_name.as_str()) {
-        return Some(Evidence::StandardName);
-    }
-    if !standard_name.is_empty() {
-        return None;
-    }
-    let units = variable.text("units").unwrap_or_default().to_lowercase().replace('_', "");
-    let units_say = match field.kind {
-        Kind::Latitude => {
-            ["degreesnorth", "degreenorth", "degreesn", "degreen"].contains(&units.as_str())
-        }
-        Kind::Longitude => {
-            ["degreeseast", "degreeeast", "degreese", "degreee"].contains(&units.as_str())
-        }
-        Kind::Time => units.contains(" since "),
-        Kind::Angle | Kind::Share => false,
-    };
-    let plain: String = variable.name.to_lowercase().replace('_', "");
-    if field.usual_names.contains(&plain.as_str()) {
-        return Some(if units_say { Evidence::Units } else { Evidence::Name });
-    }
-    units_say.then_some(Evidence::Units)
 }
 
 #[allow(clippy::too_many_arguments)] // One call, and each argument is what its name says.

@@ -12,7 +12,7 @@ use super::footprint_dimensions::FootprintDimensions;
 use super::footprint_variables;
 use super::footprints::FootprintGrid;
 use super::geolocation;
-use super::granule::{BandSource, Granule};
+use super::granule_file::{BandSource, Granule};
 use super::layout::{Layout, Role};
 use super::problem::Problem;
 use super::slabs::rows_per_slab;

@@ -18,3 +18,48 @@ pub fn rows_per_slab(index: &FileIndex, variable: &Variable, layout: &Layout) ->
     let chunk = variable.storage.chunks.as_ref().map_or(1, |chunks| chunks[axis]).clamp(1, rows);
     (wanted / chunk).max(1) * chunk
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::netcdf_files::{Dimension, FileFormat, Storage, ValueKind};
+
+    /// Rows of a slab of float values with the given lengths (rows, channels) and chunk rows.
+    fn rows(lengths: [usize; 2], chunk_rows: Option<usize>) -> usize {
+        let dimension = |length| Dimension { name: "d".into(), group: 0, length, unlimited: false };
+        let index = FileIndex {
+            version: 1,
+            format: FileFormat::Netcdf4,
+            groups: Vec::new(),
+            dimensions: lengths.map(dimension).to_vec(),
+            variables: Vec::new(),
+            unreadable: Vec::new(),
+        };
+        let chunks = chunk_rows.map(|rows| vec![rows, lengths[1]]);
+        let variable = Variable {
+            path: "v".into(),
+            name: "v".into(),
+            group: 0,
+            dimensions: vec![0, 1],
+            kind: ValueKind::F32,
+            attributes: Vec::new(),
+            storage: Storage { chunks, ..Storage::default() },
+        };
+        let layout = Layout::new(vec![Role::Footprint(0), Role::Spectral], lengths.to_vec());
+        rows_per_slab(&index, &variable, &layout)
+    }
+
+    #[test]
+    fn a_small_band_is_one_slab_and_a_large_one_is_cut_at_about_8_mb() {
+        assert_eq!(rows([10, 100], None), 10);
+        assert_eq!(rows([10_000, 1024], None), 2048);
+    }
+
+    #[test]
+    fn slabs_are_whole_chunks() {
+        assert_eq!(rows([10_000, 1024], Some(1000)), 2000);
+        assert_eq!(rows([10_000, 1024], Some(5000)), 5000, "one chunk is the least");
+        assert_eq!(rows([10, 1 << 24], Some(1)), 1, "and one row");
+        assert_eq!(rows([10, 100], Some(1000)), 10, "a chunk may be longer than the variable");
+    }
+}

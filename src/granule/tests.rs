@@ -28,9 +28,22 @@ fn open(path: &Path) -> Result<Granule, GranuleError> {
     Granule::open(&ReaderProgram::in_process(), path, &ReadLimits::default())
 }
 
-fn opened(write: impl FnOnce(&mut NetcdfWriter)) -> Granule {
+/// A granule whose file stays there as long as it does.
+struct Opened {
+    granule: Granule,
+    _file: File,
+}
+
+impl std::ops::Deref for Opened {
+    type Target = Granule;
+    fn deref(&self) -> &Granule {
+        &self.granule
+    }
+}
+
+fn opened(write: impl FnOnce(&mut NetcdfWriter)) -> Opened {
     let file = file(write);
-    open(&file.path).unwrap()
+    Opened { granule: open(&file.path).unwrap(), _file: file }
 }
 
 fn put(writer: &mut NetcdfWriter, draft: VariableDraft, values: impl Into<Samples>) {
@@ -386,6 +399,18 @@ fn a_metre_axis_that_is_no_wavelength_is_not_taken_for_one() {
         put(writer, radiance("radiance", &["line", "x"], UNIT), vec![1.0_f32; 4]);
     });
     assert!(open(&distances.path).unwrap_err().to_string().contains("no spectral axis"));
+}
+
+#[test]
+fn a_file_that_is_written_over_or_vanishes_is_not_read_on() {
+    let file = file(plain);
+    let granule = open(&file.path).unwrap();
+    granule.read_spectrum(0, 0).unwrap();
+    std::fs::OpenOptions::new().write(true).open(&file.path).unwrap().set_len(4000).unwrap();
+    let error = granule.fill(&Cancel::new(), &mut |_| {}).unwrap_err().to_string();
+    assert!(error.contains("has changed"), "{error}");
+    std::fs::remove_file(&file.path).unwrap();
+    assert!(granule.hash().unwrap_err().to_string().contains("synthetic.nc"));
 }
 
 #[test]

@@ -1,57 +1,20 @@
 //! The parent's side: asks a reader process about one file, and gives up on it in time.
 
-use std::io::{self, PipeReader, PipeWriter, Write};
-use std::os::unix::process::{CommandExt, ExitStatusExt};
+use std::io;
 use std::path::{Path, PathBuf};
-use std::process::{Child, Command, Stdio};
 use std::sync::{Mutex, PoisonError};
-use std::time::Duration;
 
 use super::door;
 use super::index::{FileIndex, Variable};
-use super::messages::{self, Reply, Request};
+use super::link::Link;
+use super::messages::{Reply, Request};
 use super::pipe::{TimedPipe, read_samples};
 use super::read_error::{ReadError, ReadFault};
+use super::reader_program::{ReadLimits, ReaderProgram};
 use super::samples::{Samples, ValueKind};
 use super::serve::LARGEST_ANSWER;
 use super::turns::Turns;
-use crate::system::{Deadline, FileStamp};
-
-/// The hidden command of the program that makes it a reader.
-pub const READER_COMMAND: &str = "reader-process";
-
-/// The program that is started as a reader: this one, by its path.
-#[derive(Debug, Clone)]
-pub struct ReaderProgram(Option<PathBuf>);
-
-impl ReaderProgram {
-    /// The program at `path` (`current_exe` in `main`), which knows the hidden command.
-    pub fn new(path: impl Into<PathBuf>) -> Self {
-        Self(Some(path.into()))
-    }
-
-    /// A thread of this process instead of a process of its own, for unit tests: no limits hold.
-    #[cfg(test)]
-    pub fn in_process() -> Self {
-        Self(None)
-    }
-}
-
-/// What a reader may use.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct ReadLimits {
-    /// How long one question may take; opening is one question.
-    pub per_request: Duration,
-    /// Bytes of address space.
-    pub memory: u64,
-}
-
-impl Default for ReadLimits {
-    /// Ten seconds a question and 2 GiB.
-    fn default() -> Self {
-        Self { per_request: Duration::from_secs(10), memory: 2 << 30 }
-    }
-}
+use crate::system::FileStamp;
 
 /// A file that a reader process has open. Many threads may ask; their questions take turns.
 ///
@@ -121,23 +84,24 @@ impl FileReader {
     }
 
     /// Reads a block of a variable: `count` values along each dimension from `start`, row-major.
+    /// Goes before everything that is read in the background.
     pub fn read(
         &self,
         variable: &Variable,
         start: &[usize],
         count: &[usize],
     ) -> Result<Samples, ReadError> {
-        self.read_in_turn(variable, start, count, false)
+        self.read_in_turn(variable, start, count, true)
     }
 
-    /// The same, before all questions that wait and are not urgent.
-    pub fn read_urgently(
+    /// The same for work that nobody waits for: it lets all others go first.
+    pub fn read_in_background(
         &self,
         variable: &Variable,
         start: &[usize],
         count: &[usize],
     ) -> Result<Samples, ReadError> {
-        self.read_in_turn(variable, start, count, true)
+        self.read_in_turn(variable, start, count, false)
     }
 
     /// Reads all values of a variable, row-major.
@@ -164,6 +128,8 @@ impl FileReader {
             count: count.to_vec(),
         };
         let _turn = self.turns.take(urgent);
+        // Values of a file that has been written over would not belong to those read before.
+        self.check_unchanged()?;
         // A link is taken out while it is used, so that a panic leaves none behind half-way.
         let mut place = self.link.lock().unwrap_or_else(PoisonError::into_inner);
         let mut link = match place.take() {
@@ -188,7 +154,6 @@ impl FileReader {
     }
 
     fn start_again(&self) -> Result<Link, ReadError> {
-        self.check_unchanged()?;
         Link::start(&self.program, &self.absolute, &self.limits).map_err(|fault| self.error(fault))
     }
 
@@ -247,162 +212,6 @@ fn take_values(
         }
         _ => Err(io::Error::new(io::ErrorKind::InvalidData, "other values than those asked for")),
     }
-}
-
-/// A running reader and the pipes to it.
-#[derive(Debug)]
-struct Link {
-    requests: PipeWriter,
-    replies: PipeReader,
-    child: Option<Child>,
-}
-
-impl Link {
-    fn start(program: &ReaderProgram, path: &Path, limits: &ReadLimits) -> Result<Self, ReadFault> {
-        Self::try_start(program, path, limits)
-            .map_err(|error| ReadFault::NoReader(error.to_string()))
-    }
-
-    fn try_start(program: &ReaderProgram, path: &Path, limits: &ReadLimits) -> io::Result<Self> {
-        let (questions, requests) = io::pipe()?;
-        let (replies, answers) = io::pipe()?;
-        // A larger pipe saves switches between the two processes; the default works as well.
-        let _ = rustix::pipe::fcntl_setpipe_size(&replies, 1 << 20);
-        let child = match &program.0 {
-            Some(program) => Some(start_process(program, path, limits, questions, answers)?),
-            None => {
-                let path = path.to_owned();
-                std::thread::spawn(move || super::serve(&path, questions, answers, || {}));
-                None
-            }
-        };
-        Ok(Self { requests, replies, child })
-    }
-
-    /// Asks one question. The error tells whether the reader is still good for the next one.
-    fn ask<Answer>(
-        &mut self,
-        request: &Request,
-        what: &str,
-        limits: &ReadLimits,
-        take: impl FnOnce(Reply, &mut TimedPipe<'_>) -> io::Result<Answer>,
-    ) -> Result<Answer, (ReadFault, bool)> {
-        let what = what.to_owned();
-        let deadline = Deadline::after(limits.per_request);
-        match self.exchange(request, deadline, take) {
-            Ok(Ok(answer)) => Ok(answer),
-            Ok(Err(Reply::MissingFilter { filter })) => Err((
-                ReadFault::MissingFilter { what, filter: crate::system::clean_text(&filter) },
-                true,
-            )),
-            Ok(Err(Reply::Failed { reason })) => {
-                Err((ReadFault::Library { what, reason: crate::system::clean_text(&reason) }, true))
-            }
-            Ok(Err(_)) => Err((ReadFault::Nonsense { what, how: "another answer".into() }, false)),
-            Err(error) => {
-                let late = error.kind() == io::ErrorKind::TimedOut;
-                let how = self.end(late);
-                let fault = match error.kind() {
-                    io::ErrorKind::TimedOut => {
-                        ReadFault::TimedOut { what, limit: limits.per_request }
-                    }
-                    io::ErrorKind::InvalidData => {
-                        ReadFault::Nonsense { what, how: error.to_string() }
-                    }
-                    _ => ReadFault::Died { what, how },
-                };
-                Err((fault, false))
-            }
-        }
-    }
-
-    fn exchange<Answer>(
-        &mut self,
-        request: &Request,
-        deadline: Deadline,
-        take: impl FnOnce(Reply, &mut TimedPipe<'_>) -> io::Result<Answer>,
-    ) -> io::Result<Result<Answer, Reply>> {
-        // A question is far smaller than a pipe, so writing it never waits.
-        messages::send(&mut self.requests, request)?;
-        self.requests.flush()?;
-        let mut input = TimedPipe { pipe: &mut self.replies, deadline };
-        match messages::receive::<Reply>(&mut input)? {
-            refusal @ (Reply::Failed { .. } | Reply::MissingFilter { .. }) => Ok(Err(refusal)),
-            reply => take(reply, &mut input).map(Ok),
-        }
-    }
-
-    /// Ends the reader and everything it may have started; says how it ended if it had already.
-    fn end(&mut self, kill_first: bool) -> String {
-        let Some(mut child) = self.child.take() else { return "is gone".into() };
-        if kill_first {
-            kill_group(&child);
-        }
-        // One that died by itself closes its pipe a moment before it can be waited for.
-        let ended = wait_briefly(&mut child);
-        kill_group(&child);
-        let how = match ended.and_then(|status| status.signal()) {
-            Some(signal) => format!("died of signal {signal}"),
-            None => "ended without an answer".into(),
-        };
-        if ended.is_none() && wait_briefly(&mut child).is_none() {
-            // A process that waits for a dead file system cannot be killed now; we do not wait with it.
-            std::thread::spawn(move || child.wait());
-        }
-        how
-    }
-}
-
-impl Drop for Link {
-    fn drop(&mut self) {
-        self.end(true);
-    }
-}
-
-/// The reader is the leader of its own group.
-fn kill_group(child: &Child) {
-    let group = i32::try_from(child.id()).ok().and_then(rustix::process::Pid::from_raw);
-    if let Some(group) = group {
-        // It may have ended already.
-        let _ = rustix::process::kill_process_group(group, rustix::process::Signal::KILL);
-    }
-}
-
-fn wait_briefly(child: &mut Child) -> Option<std::process::ExitStatus> {
-    let deadline = Deadline::after(Duration::from_millis(100));
-    loop {
-        match child.try_wait() {
-            Ok(Some(status)) => return Some(status),
-            Ok(None) if !deadline.passed() => std::thread::sleep(Duration::from_micros(500)),
-            _ => return None,
-        }
-    }
-}
-
-fn start_process(
-    program: &Path,
-    path: &Path,
-    limits: &ReadLimits,
-    questions: PipeReader,
-    answers: PipeWriter,
-) -> io::Result<Child> {
-    Command::new(program)
-        .arg(READER_COMMAND)
-        .arg("--memory")
-        .arg(limits.memory.to_string())
-        .arg("--")
-        .arg(path)
-        // Settings and plug-in folders of the user's netCDF and HDF5 are not ours to follow; shared
-        // file systems often have no locks, and reading needs none.
-        .env_clear()
-        .env("HDF5_USE_FILE_LOCKING", "FALSE")
-        .current_dir("/")
-        .process_group(0)
-        .stdin(Stdio::from(questions))
-        .stdout(Stdio::from(answers))
-        // What the libraries say there is for nobody, least of all for a terminal with a screen on it.
-        .stderr(Stdio::null())
-        .spawn()
 }
 
 #[cfg(test)]

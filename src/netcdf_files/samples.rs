@@ -134,6 +134,7 @@ impl Samples {
     }
 
     /// The value at `index` as a number; NaN for a string and behind the end.
+    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     pub fn get(&self, index: usize) -> f64 {
         with_values!(
             self,
@@ -143,6 +144,7 @@ impl Samples {
     }
 
     /// All values as numbers; a string is NaN.
+    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     pub fn to_f64(&self) -> Vec<f64> {
         with_values!(
             self,

@@ -244,3 +244,36 @@ fn a_file_larger_than_memory_on_paper_only_is_refused() {
     writer.close().unwrap();
     assert!(refused(&path).contains("footprints"));
 }
+
+/// Whether the kernel can shut a process into one file.
+fn kernel_has_landlock() -> bool {
+    use landlock::{AccessFs, CompatLevel, Compatible, Ruleset, RulesetAttr};
+    Ruleset::default()
+        .set_compatibility(CompatLevel::HardRequirement)
+        .handle_access(AccessFs::ReadFile)
+        .and_then(Ruleset::create)
+        .is_ok()
+}
+
+#[test]
+fn a_link_into_another_file_is_not_followed() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = small_granule(folder.path());
+    let other = folder.path().join("other.nc");
+    let mut writer = NetcdfWriter::create(&other).unwrap();
+    writer.dimension("line", 6).unwrap();
+    writer.variable(&VariableDraft::new("secret", ValueKind::F32, &["line"])).unwrap();
+    writer.close().unwrap();
+    let file = hdf5_metno::File::open_rw(&path).unwrap();
+    file.link_external(other.to_str().unwrap(), "/secret", "linked").unwrap();
+    drop(file);
+    assert!(
+        netcdf::open(&path).unwrap().variable("linked").is_some(),
+        "the library by itself follows the link, or this test shows nothing"
+    );
+    if kernel_has_landlock() {
+        assert!(refused(&path).contains("HDF error"));
+    } else {
+        eprintln!("skipped: this kernel has no Landlock");
+    }
+}

@@ -1,5 +1,7 @@
 //! Reading back what the writer wrote, through the messages, in a thread instead of a process.
 
+use std::time::Duration;
+
 use super::*;
 use crate::netcdf_files::{AttributeValue, FileFormat, NetcdfWriter, VariableDraft};
 

@@ -201,7 +201,7 @@ impl Granule {
         }
         let layout = &self.sources[band].layout;
         let (start, count) = layout.rows(self.cube.rows_of(band, slab));
-        let samples = self.reader.read(self.band_variable(band), &start, &count)?;
+        let samples = self.reader.read_in_background(self.band_variable(band), &start, &count)?;
         self.cube.set_slab(band, slab, layout.footprint_major(&count, samples));
         Ok(())
     }
@@ -215,7 +215,7 @@ impl Granule {
         }
         let position = self.footprints.position(footprint);
         let (start, count) = self.sources[band].layout.spectrum(&position);
-        let samples = self.reader.read_urgently(self.band_variable(band), &start, &count)?;
+        let samples = self.reader.read(self.band_variable(band), &start, &count)?;
         Ok(self.cube.decode_spectrum(band, &samples))
     }
 
