@@ -7,8 +7,7 @@ use std::io::Write;
 use std::path::PathBuf;
 
 use super::Exit;
-use super::inputs::Reading;
-use super::surroundings::reader_program;
+use super::inputs::{Reading, reader_program};
 use crate::granule::Granule;
 use description::Description;
 

@@ -11,7 +11,7 @@ use anyhow::Context;
 
 use super::exit::UsageError;
 use super::natural_order::sort_naturally;
-use crate::netcdf_files::ReadLimits;
+use crate::netcdf_files::{ReadLimits, ReaderProgram};
 
 /// Endings of the files that are taken out of a folder.
 const ENDINGS: [&str; 5] = ["nc", "nc4", "cdf", "h5", "hdf5"];
@@ -47,6 +47,15 @@ impl Reading {
         let defaults = ReadLimits::default();
         ReadLimits { per_request: self.reader_limit.unwrap_or(defaults.per_request), ..defaults }
     }
+}
+
+/// This program, which is started again as the reader of a file.
+///
+/// # Errors
+/// The system does not tell where the program lies.
+pub fn reader_program() -> anyhow::Result<ReaderProgram> {
+    let program = std::env::current_exe().context("cannot find this program to read files with")?;
+    Ok(ReaderProgram::new(program))
 }
 
 impl Inputs {
