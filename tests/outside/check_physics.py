@@ -201,13 +201,21 @@ def own_bands(path):
             yield variable, axis.values / per_centimetre, kind, values
 
 
+def positions(bands):
+    """Corners, one inside, and for each band the footprints with most missing and most negative."""
+    shape = bands[0][3].shape[:-1]
+    chosen = {tuple(int(part * (length - 1)) for length in shape) for part in (0.0, 0.4, 1.0)}
+    for _, _, _, values in bands:
+        for odd in (np.isnan(values), values < 0):
+            chosen.add(tuple(map(int, np.unravel_index(odd.sum(axis=-1).argmax(), shape))))
+    return sorted(chosen)
+
+
 def check_sample(tally, binary, path):
-    """Three footprints of a sample granule."""
+    """Some footprints of a sample granule, those with most missing and most negative values too."""
     bands = list(own_bands(path))
     tally.check(bands, f"{path.name}: xarray finds spectra by their standard names")
-    for part in (0.0, 0.4, 1.0):
-        shape = bands[0][3].shape[:-1]
-        position = tuple(int(part * (length - 1)) for length in shape)
+    for position in positions(bands):
         found = answer(binary, "spectrum", path, "--at", ",".join(map(str, position)))["bands"]
         tally.check(len(found) == len(bands), f"{path.name}: {len(found)} bands")
         for (variable, wavenumbers, kind, values), band in zip(bands, found):
