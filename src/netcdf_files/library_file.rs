@@ -6,11 +6,13 @@ use std::path::{Path, PathBuf};
 use netcdf::Extents;
 
 use super::attribute::Attribute;
+use super::chunks::{self, ChunkTable};
 use super::index::{Dimension, FileIndex, Group, INDEX_VERSION, Variable};
 use super::library_types::{attribute_of, kind_of};
 use super::samples::ValueKind;
 use super::storage::{StorageView, storage_of};
 use super::writer::FileFormat;
+use crate::system::FileStamp;
 
 /// Groups within groups deeper than this are a sign of a loop.
 const DEEPEST_GROUP: usize = 32;
@@ -72,6 +74,8 @@ impl LibraryFile {
         let kind = kind_of(&variable.vartype());
         let size = kind.size().ok_or("its values have no fixed size")?;
         let values = count.iter().try_fold(size, |product, &count| product.checked_mul(count));
+        // Zeros where the library leaves unwritten places alone, not what another answer left there.
+        bytes.clear();
         bytes.resize(values.ok_or("the block is too large")?, 0);
         if !bytes.is_empty() {
             let block = extents(start, count)?;
@@ -106,6 +110,14 @@ impl LibraryFile {
     /// The filter that keeps a variable from being read, if there is one.
     pub fn missing_filter(&self, path: &str) -> Option<String> {
         StorageView::open(&self.path)?.filters(path).1
+    }
+
+    /// Where the chunks of a variable lie.
+    pub fn chunks(&self, path: &str) -> Result<ChunkTable, Refusal> {
+        let kind = self.kind(path)?;
+        let view = StorageView::open(&self.path).ok_or("it is not stored in chunks")?;
+        let stamp = FileStamp::of(&self.path).map_err(|error| error.to_string())?;
+        chunks::survey(view.file(), path, kind, stamp)
     }
 
     fn variable(&self, path: &str) -> Result<netcdf::Variable<'_>, Refusal> {

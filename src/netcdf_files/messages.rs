@@ -8,6 +8,7 @@ use std::io::{self, Read, Write};
 use serde::de::DeserializeOwned;
 use serde::{Deserialize, Serialize};
 
+use super::chunks::ChunkTable;
 use super::index::FileIndex;
 use super::samples::ValueKind;
 
@@ -28,6 +29,11 @@ pub enum Request {
         /// How many places along each dimension.
         count: Vec<usize>,
     },
+    /// Where the chunks of a variable lie.
+    Chunks {
+        /// The variable's path.
+        path: String,
+    },
 }
 
 /// What the reader answers.
@@ -42,6 +48,8 @@ pub enum Reply {
         /// How many there are.
         count: usize,
     },
+    /// Where the chunks of a variable lie.
+    Chunks(Box<ChunkTable>),
     /// Strings.
     Texts(Vec<String>),
     /// The library refused.

@@ -5,6 +5,7 @@
 //! **Never** knows what a radiance is.
 
 mod attribute;
+mod chunks;
 mod confine;
 mod door;
 mod index;
@@ -23,6 +24,7 @@ mod turns;
 mod writer;
 
 pub use attribute::{Attribute, AttributeValue};
+pub use chunks::Demand;
 pub use confine::confine;
 pub use index::{Dimension, FileIndex, Group, Storage, Variable};
 pub use read_error::ReadError;

@@ -83,6 +83,22 @@ pub enum ReadFault {
         /// What is wrong with the answer.
         how: String,
     },
+    /// A chunk of values is damaged.
+    #[error("{what}: the chunk that begins at {place:?} is damaged ({how}): fetch the file again")]
+    Chunk {
+        /// What was asked for.
+        what: String,
+        /// The place of the chunk's first value along each dimension.
+        place: Vec<usize>,
+        /// What is wrong with it.
+        how: String,
+    },
+    /// Someone asked to stop.
+    #[error("{what}: reading was stopped")]
+    Cancelled {
+        /// What was asked for.
+        what: String,
+    },
     /// The file is no longer what it was when it was opened.
     #[error("has changed since it was opened: open it again")]
     Changed,

@@ -4,6 +4,7 @@ use std::io;
 use std::path::{Path, PathBuf};
 use std::sync::{Mutex, PoisonError};
 
+use super::chunks::{ChunkTable, Demand, FastPath, KnownFile};
 use super::door;
 use super::index::{FileIndex, Variable};
 use super::link::Link;
@@ -14,7 +15,7 @@ use super::reader_program::{ReadLimits, ReaderProgram};
 use super::samples::{Samples, ValueKind};
 use super::serve::LARGEST_ANSWER;
 use super::turns::Turns;
-use crate::system::FileStamp;
+use crate::system::{Cancel, FileStamp};
 
 /// A file that a reader process has open. Many threads may ask; their questions take turns.
 ///
@@ -28,6 +29,7 @@ pub struct FileReader {
     limits: ReadLimits,
     stamp: FileStamp,
     index: FileIndex,
+    fast: FastPath,
     turns: Turns,
     link: Mutex<Option<Link>>,
 }
@@ -54,6 +56,7 @@ impl FileReader {
             limits: *limits,
             stamp,
             index,
+            fast: FastPath::default(),
             turns: Turns::default(),
             link: Mutex::new(Some(link)),
         })
@@ -91,7 +94,7 @@ impl FileReader {
         start: &[usize],
         count: &[usize],
     ) -> Result<Samples, ReadError> {
-        self.read_in_turn(variable, start, count, true)
+        self.read_on_demand(variable, start, count, Demand { urgent: true, cancel: None })
     }
 
     /// The same for work that nobody waits for: it lets all others go first.
@@ -101,7 +104,7 @@ impl FileReader {
         start: &[usize],
         count: &[usize],
     ) -> Result<Samples, ReadError> {
-        self.read_in_turn(variable, start, count, false)
+        self.read_on_demand(variable, start, count, Demand::default())
     }
 
     /// Reads all values of a variable, row-major.
@@ -110,23 +113,75 @@ impl FileReader {
         self.read(variable, &vec![0; lengths.len()], &lengths)
     }
 
-    fn read_in_turn(
+    /// The same, as urgent as `demand` says and until its wish to stop.
+    ///
+    /// Values that are stored in the usual ways are decoded in this process, by several threads
+    /// unless they are urgent; all others come from the reader. A block that covers chunks as a whole
+    /// costs least: a chunk that is cut by it is decoded anew for each part.
+    pub fn read_on_demand(
         &self,
         variable: &Variable,
         start: &[usize],
         count: &[usize],
-        urgent: bool,
+        demand: Demand<'_>,
     ) -> Result<Samples, ReadError> {
         let what = format!("variable `{}`", crate::system::clean_text(&variable.path));
         let fits = self.fits(variable, start, count);
         let values = fits.map_err(|why| {
             self.error(ReadFault::BadRequest { what: what.clone(), why: why.to_owned() })
         })?;
+        let known = KnownFile {
+            path: &self.path,
+            opened: &self.absolute,
+            stamp: self.stamp,
+            index: &self.index,
+        };
+        let fast = self.fast.read(known, variable, (start, count), demand, || {
+            self.chunk_table(variable, &what, demand.urgent)
+        });
+        if let Some(samples) = fast? {
+            return Ok(samples);
+        }
+        if demand.cancel.is_some_and(Cancel::is_cancelled) {
+            return Err(self.error(ReadFault::Cancelled { what }));
+        }
         let request = Request::Read {
             path: variable.path.clone(),
             start: start.to_vec(),
             count: count.to_vec(),
         };
+        self.ask(&request, &what, demand.urgent, |reply, input| {
+            take_values(reply, input, variable.kind, values)
+        })
+    }
+
+    /// Where the chunks of a variable lie; nothing where the library does not say.
+    fn chunk_table(
+        &self,
+        variable: &Variable,
+        what: &str,
+        urgent: bool,
+    ) -> Result<Option<ChunkTable>, ReadError> {
+        let request = Request::Chunks { path: variable.path.clone() };
+        let table = self.ask(&request, what, urgent, |reply, _| match reply {
+            Reply::Chunks(table) => Ok(*table),
+            _ => Err(io::ErrorKind::InvalidData.into()),
+        });
+        match table {
+            Ok(table) => Ok(Some(table)),
+            Err(ReadError { fault: ReadFault::Library { .. }, .. }) => Ok(None),
+            Err(error) => Err(error),
+        }
+    }
+
+    /// Asks the reader one question when it is its turn.
+    fn ask<Answer>(
+        &self,
+        request: &Request,
+        what: &str,
+        urgent: bool,
+        take: impl FnOnce(Reply, &mut TimedPipe<'_>) -> io::Result<Answer>,
+    ) -> Result<Answer, ReadError> {
         let _turn = self.turns.take(urgent);
         // Values of a file that has been written over would not belong to those read before.
         self.check_unchanged()?;
@@ -136,19 +191,14 @@ impl FileReader {
             Some(link) => link,
             None => self.start_again()?,
         };
-        let samples = link
-            .ask(&request, &what, &self.limits, |reply, input| {
-                take_values(reply, input, variable.kind, values)
-            })
-            .map_err(|(fault, still_good)| (self.error(fault), still_good));
-        match samples {
-            Ok(samples) => {
+        match link.ask(request, what, &self.limits, take) {
+            Ok(answer) => {
                 *place = Some(link);
-                Ok(samples)
+                Ok(answer)
             }
-            Err((error, still_good)) => {
+            Err((fault, still_good)) => {
                 *place = Some(link).filter(|_| still_good);
-                Err(error)
+                Err(self.error(fault))
             }
         }
     }

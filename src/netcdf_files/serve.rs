@@ -74,6 +74,7 @@ impl Desk<'_> {
                 let size = kind.size().unwrap_or(1);
                 Ok(Reply::Values { kind, count: self.bytes.len() / size })
             }
+            Request::Chunks { path } => Ok(Reply::Chunks(Box::new(file.chunks(path)?))),
         }
     }
 

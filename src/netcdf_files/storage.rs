@@ -19,6 +19,11 @@ impl StorageView {
         builder.open_as(path, OpenMode::Read).ok().map(Self)
     }
 
+    /// The file, as HDF5 knows it.
+    pub fn file(&self) -> &hdf5_metno::File {
+        &self.0
+    }
+
     /// The filters of a variable: all in words, and the first one that is missing here.
     pub fn filters(&self, variable: &str) -> (Vec<String>, Option<String>) {
         let filters = self.0.dataset(variable).map(|data| data.filters()).unwrap_or_default();

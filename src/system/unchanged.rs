@@ -5,8 +5,10 @@ use std::io;
 use std::os::unix::fs::MetadataExt;
 use std::path::Path;
 
+use serde::{Deserialize, Serialize};
+
 /// What tells two states of a file apart without reading it: device, inode, size, time of change.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
 pub struct FileStamp {
     device: u64,
     inode: u64,
