@@ -2,7 +2,7 @@
 
 use std::path::{Path, PathBuf};
 
-use crate::netcdf_files::ReadError;
+use crate::netcdf_files::{ReadError, ReadFault};
 use crate::system::clean_text;
 
 /// Why a file is no granule, or why its values could not be had.
@@ -10,7 +10,7 @@ use crate::system::clean_text;
 pub enum GranuleError {
     /// The file could not be read.
     #[error(transparent)]
-    Read(#[from] ReadError),
+    Read(ReadError),
     /// The file was read, but holds nothing that the program can use.
     #[error("{}: {why}", clean_text(&path.to_string_lossy()))]
     NotUsable {
@@ -32,6 +32,15 @@ pub enum GranuleError {
     /// The work was cancelled.
     #[error("cancelled")]
     Cancelled,
+}
+
+impl From<ReadError> for GranuleError {
+    fn from(error: ReadError) -> Self {
+        match error.fault {
+            ReadFault::Cancelled { .. } => Self::Cancelled,
+            _ => Self::Read(error),
+        }
+    }
 }
 
 impl GranuleError {

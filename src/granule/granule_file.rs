@@ -15,7 +15,10 @@ use super::geolocation::Geolocation;
 use super::identity::Identity;
 use super::layout::Layout;
 use super::problem::Problem;
-use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable};
+use super::side_by_side::side_by_side;
+use crate::netcdf_files::{
+    Demand, FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable,
+};
 use crate::spectral::{brightness_temperature_or_nan, planck};
 use crate::system::{Cancel, clean_text};
 
@@ -163,14 +166,16 @@ impl Granule {
         Arc::clone(&self.cube)
     }
 
-    /// Reads all slabs that are not here yet, band by band; tells how far it is after each.
+    /// Reads all slabs that are not here yet, band by band, with several threads; tells after each
+    /// slab how many are done.
     ///
     /// # Errors
-    /// A slab could not be read, or `cancel` was asked for. What is here stays.
+    /// A slab could not be read (of several, the first one), or `cancel` was asked for. What is here
+    /// stays.
     pub fn fill(
         &self,
         cancel: &Cancel,
-        progress: &mut dyn FnMut(Progress),
+        progress: &mut (dyn FnMut(Progress) + Send),
     ) -> Result<(), GranuleError> {
         self.fill_bands(0..self.bands.len(), cancel, progress)
     }
@@ -180,28 +185,37 @@ impl Granule {
         &self,
         bands: impl IntoIterator<Item = usize>,
         cancel: &Cancel,
-        progress: &mut dyn FnMut(Progress),
+        progress: &mut (dyn FnMut(Progress) + Send),
     ) -> Result<(), GranuleError> {
         let slabs = |band| (0..self.cube.slabs(band)).map(move |slab| (band, slab));
         let slabs: Vec<(usize, usize)> = bands.into_iter().flat_map(slabs).collect();
-        for (done, &(band, slab)) in slabs.iter().enumerate() {
-            if cancel.is_cancelled() {
-                return Err(GranuleError::Cancelled);
-            }
-            self.fill_slab(band, slab)?;
-            progress(Progress { done: done + 1, total: slabs.len() });
-        }
-        Ok(())
+        let fill = |(band, slab)| match cancel.is_cancelled() {
+            true => Err(GranuleError::Cancelled),
+            false => self.fill_slab_until(band, slab, Some(cancel)),
+        };
+        let mut tell = |done| progress(Progress { done, total: slabs.len() });
+        side_by_side(&slabs, fill, &mut tell)
     }
 
     /// Reads one slab of a band, if it is not here yet.
     pub fn fill_slab(&self, band: usize, slab: usize) -> Result<(), GranuleError> {
+        self.fill_slab_until(band, slab, None)
+    }
+
+    fn fill_slab_until(
+        &self,
+        band: usize,
+        slab: usize,
+        cancel: Option<&Cancel>,
+    ) -> Result<(), GranuleError> {
         if self.cube.has_slab(band, slab) {
             return Ok(());
         }
         let layout = &self.sources[band].layout;
         let (start, count) = layout.rows(self.cube.rows_of(band, slab));
-        let samples = self.reader.read_in_background(self.band_variable(band), &start, &count)?;
+        let demand = Demand { urgent: false, cancel };
+        let variable = self.band_variable(band);
+        let samples = self.reader.read_on_demand(variable, &start, &count, demand)?;
         self.cube.set_slab(band, slab, layout.footprint_major(&count, samples));
         Ok(())
     }

@@ -21,6 +21,7 @@ mod identity;
 mod layout;
 mod open;
 mod problem;
+mod side_by_side;
 mod slabs;
 mod spectral_axis;
 mod time;

@@ -3,9 +3,9 @@
 use super::layout::{Layout, Role};
 use crate::netcdf_files::{FileIndex, Variable};
 
-/// About as much is read at once: far below a second even where it is compressed, and enough that
-/// the questions to the reader cost nothing.
-const BYTES_PER_SLAB: usize = 8 << 20;
+/// About as much is read at once: a millisecond's work where it is decoded here, so that all threads
+/// have some and the picture fills evenly, and enough that questions to the reader cost little.
+const BYTES_PER_SLAB: usize = 1 << 20;
 
 /// The rows of a slab: whole chunks, so that none is inflated twice.
 pub fn rows_per_slab(index: &FileIndex, variable: &Variable, layout: &Layout) -> usize {

@@ -117,6 +117,42 @@ fn the_cube_says_what_is_not_here_yet() {
 }
 
 #[test]
+fn many_slabs_are_filled_by_several_threads_and_told_in_order() {
+    let channels = 500;
+    let value = |line: usize, position: usize, channel: usize| {
+        (1000 * line + 10 * position) as f32 + channel as f32 / 1000.0
+    };
+    let file = file(|writer| {
+        for (name, length) in [("line", 40), ("position", 30), ("nu", channels)] {
+            writer.dimension(name, length).unwrap();
+        }
+        let wavenumbers: Vec<f64> = (0..channels).map(|n| 900.0 + n as f64).collect();
+        put(writer, axis("nu", "nu", "cm-1"), wavenumbers);
+        let draft = radiance("radiance", &["line", "position", "nu"], UNIT);
+        let places = (0..40).flat_map(|line| (0..30).map(move |position| (line, position)));
+        let values: Vec<f32> = places
+            .flat_map(|(line, position)| (0..channels).map(move |n| value(line, position, n)))
+            .collect();
+        put(writer, draft.chunks(&[4, 10, 300]).deflate(1), values);
+    });
+    let granule = open(&file.path).unwrap();
+    let slabs = granule.cube().slabs(0);
+    assert!(slabs > 1);
+    let mut seen = Vec::new();
+    granule.fill(&Cancel::new(), &mut |progress| seen.push(progress.done)).unwrap();
+    assert_eq!(seen, (1..=slabs).collect::<Vec<_>>());
+    let cube = granule.cube();
+    let mut spectrum = Vec::new();
+    for footprint in [0, 29, 30, 601, 1199] {
+        assert_eq!(cube.values(0, footprint, &mut spectrum), Presence::Here);
+        let expected: Vec<f64> = (0..channels)
+            .map(|channel| f64::from(value(footprint / 30, footprint % 30, channel)))
+            .collect();
+        assert_eq!(spectrum, expected);
+    }
+}
+
+#[test]
 fn filling_stops_when_it_is_asked_to() {
     let granule = opened(plain);
     let cancel = Cancel::new();

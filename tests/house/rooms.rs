@@ -60,6 +60,7 @@ const BELONGS_TO: &[(&[&str], &[&str], &str)] = &[
         &["netcdf_files"],
         "the C libraries are called in netcdf_files only",
     ),
+    (&["libdeflater"], &["netcdf_files"], "bytes out of a file are inflated in netcdf_files only"),
     (&["ratatui", "crossterm"], &["ui"], "the terminal is drawn in ui only"),
     (
         &["println!", "eprintln!", "print!(", "eprint!(", "io::stdout()", "io::stderr()"],

@@ -68,6 +68,51 @@ fn blocks_strings_and_big_endian_values_come_back() {
 }
 
 #[test]
+fn large_variables_come_the_same_by_chunks_and_by_the_reader() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("file.nc");
+    let mut writer = NetcdfWriter::create(&path).unwrap();
+    writer.dimension("line", 300).unwrap();
+    writer.dimension("position", 500).unwrap();
+    let draft = VariableDraft::new("g/v", ValueKind::F32, &["line", "position"]);
+    writer.variable(&draft.chunks(&[40, 500]).deflate(1)).unwrap();
+    let values: Vec<f32> = (0..150_000).map(|number| number as f32).collect();
+    writer.put_all("g/v", &values.clone().into()).unwrap();
+    writer.close().unwrap();
+
+    let reader = open(&path).unwrap();
+    let variable = reader.index().variable("g/v").unwrap();
+    let table = reader.chunk_table(variable, "v", false).unwrap().unwrap();
+    assert_eq!((table.chunk, table.lengths), (vec![40, 500], vec![300, 500]));
+    assert_eq!(reader.read_all(variable).unwrap(), Samples::F32(values.clone()));
+    let row = reader.read_urgently(variable, &[123, 0], &[1, 500]).unwrap();
+    assert_eq!(row, Samples::F32(values[61_500..62_000].to_vec()));
+    let request = Request::Read { path: "g/v".into(), start: vec![123, 0], count: vec![1, 500] };
+    let asked = reader
+        .ask(&request, "v", false, |reply, input| take_values(reply, input, ValueKind::F32, 500));
+    assert_eq!(asked.unwrap(), row);
+    let text = Variable { path: "no/such".into(), ..variable.clone() };
+    assert_eq!(reader.chunk_table(&text, "v", false).unwrap(), None);
+}
+
+#[test]
+fn a_raised_wish_to_stop_asks_the_reader_nothing() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("file.nc");
+    let mut writer = NetcdfWriter::create(&path).unwrap();
+    writer.dimension("x", 2).unwrap();
+    writer.variable(&VariableDraft::new("v", ValueKind::F64, &["x"])).unwrap();
+    writer.close().unwrap();
+    let reader = open(&path).unwrap();
+    let cancel = Cancel::new();
+    cancel.cancel();
+    let demand = Demand { urgent: false, cancel: Some(&cancel) };
+    let variable = reader.index().variable("v").unwrap();
+    let error = reader.read_on_demand(variable, &[0], &[2], demand).unwrap_err();
+    assert!(matches!(error.fault, ReadFault::Cancelled { .. }), "{error}");
+}
+
+#[test]
 fn classic_formats_are_read() {
     let folder = tempfile::tempdir().unwrap();
     for format in [FileFormat::Classic, FileFormat::Offset64, FileFormat::Data64] {
