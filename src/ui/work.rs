@@ -21,7 +21,7 @@ const PROGRESS_PAUSE: Duration = Duration::from_millis(80);
 const MOST_QUALITY: usize = 16;
 
 /// Does a job and sends its answers.
-pub fn perform(job: &Job, outside: &Outside, send: &dyn Fn(Answer)) {
+pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
     match job {
         Job::Standing { entry, path } => {
             send(Answer::Standing { entry: *entry, found: standing(path, outside) });
@@ -83,7 +83,7 @@ fn in_words(error: GranuleError) -> String {
     error.to_string()
 }
 
-fn fill(request: u64, review: &Review, cancel: &Cancel, send: &dyn Fn(Answer)) {
+fn fill(request: u64, review: &Review, cancel: &Cancel, send: &(dyn Fn(Answer) + Sync)) {
     let mut told = Instant::now();
     let found = review.granule().fill(cancel, &mut |progress| {
         if told.elapsed() >= PROGRESS_PAUSE && progress.done < progress.total {
