@@ -97,23 +97,13 @@ impl FileReader {
         self.read_on_demand(variable, start, count, Demand { urgent: true, cancel: None })
     }
 
-    /// The same for work that nobody waits for: it lets all others go first.
-    pub fn read_in_background(
-        &self,
-        variable: &Variable,
-        start: &[usize],
-        count: &[usize],
-    ) -> Result<Samples, ReadError> {
-        self.read_on_demand(variable, start, count, Demand::default())
-    }
-
     /// Reads all values of a variable, row-major.
     pub fn read_all(&self, variable: &Variable) -> Result<Samples, ReadError> {
         let lengths = self.index.lengths(variable);
         self.read(variable, &vec![0; lengths.len()], &lengths)
     }
 
-    /// The same, as urgent as `demand` says and until its wish to stop.
+    /// Reads a block, as urgent as `demand` says and until its wish to stop.
     ///
     /// Values that are stored in the usual ways are decoded in this process, by several threads
     /// unless they are urgent; all others come from the reader. A block that covers chunks as a whole

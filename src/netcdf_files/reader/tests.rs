@@ -85,7 +85,7 @@ fn large_variables_come_the_same_by_chunks_and_by_the_reader() {
     let table = reader.chunk_table(variable, "v", false).unwrap().unwrap();
     assert_eq!((table.chunk, table.lengths), (vec![40, 500], vec![300, 500]));
     assert_eq!(reader.read_all(variable).unwrap(), Samples::F32(values.clone()));
-    let row = reader.read_urgently(variable, &[123, 0], &[1, 500]).unwrap();
+    let row = reader.read(variable, &[123, 0], &[1, 500]).unwrap();
     assert_eq!(row, Samples::F32(values[61_500..62_000].to_vec()));
     let request = Request::Read { path: "g/v".into(), start: vec![123, 0], count: vec![1, 500] };
     let asked = reader
