@@ -50,14 +50,14 @@ mod tests {
     }
 
     #[test]
-    fn a_small_band_is_one_slab_and_a_large_one_is_cut_at_about_8_mb() {
+    fn a_small_band_is_one_slab_and_a_large_one_is_cut_at_about_1_mb() {
         assert_eq!(rows([10, 100], None), 10);
-        assert_eq!(rows([10_000, 1024], None), 2048);
+        assert_eq!(rows([10_000, 1024], None), 256);
     }
 
     #[test]
     fn slabs_are_whole_chunks() {
-        assert_eq!(rows([10_000, 1024], Some(1000)), 2000);
+        assert_eq!(rows([10_000, 1024], Some(100)), 200);
         assert_eq!(rows([10_000, 1024], Some(5000)), 5000, "one chunk is the least");
         assert_eq!(rows([10, 1 << 24], Some(1)), 1, "and one row");
         assert_eq!(rows([10, 100], Some(1000)), 10, "a chunk may be longer than the variable");
