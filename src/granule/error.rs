@@ -5,6 +5,24 @@ use std::path::{Path, PathBuf};
 use crate::netcdf_files::{ReadError, ReadFault};
 use crate::system::clean_text;
 
+/// Why one variable cannot be used.
+#[derive(Debug)]
+pub enum Setback {
+    /// The whole file is lost.
+    File(ReadError),
+    /// The variable is, in words.
+    Variable(String),
+}
+
+impl From<ReadError> for Setback {
+    fn from(error: ReadError) -> Self {
+        match error.fault.ends_the_file() {
+            true => Self::File(error),
+            false => Self::Variable(error.fault.to_string()),
+        }
+    }
+}
+
 /// Why a file is no granule, or why its values could not be had.
 #[derive(Debug, Clone, thiserror::Error)]
 pub enum GranuleError {

@@ -6,7 +6,7 @@ use super::footprints::FootprintGrid;
 use super::geolocation_fields::{Evidence, FIELDS, Field, Kind, evidence};
 use super::problem::Problem;
 use super::time::{TimeScale, TimeUnit};
-use crate::netcdf_files::{FileReader, Variable};
+use crate::netcdf_files::{FileReader, ReadError, Variable};
 use crate::units::AngleUnit;
 
 /// One value for each footprint, as far as the file has it. Missing values are NaN.
@@ -63,12 +63,15 @@ pub struct GeolocationSource {
 }
 
 /// Finds and reads all fields that the file has; the others become problems.
+///
+/// # Errors
+/// The whole file cannot be read any more.
 pub fn read(
     reader: &FileReader,
     dimensions: &FootprintDimensions,
     grid: &FootprintGrid,
     problems: &mut Vec<Problem>,
-) -> Geolocation {
+) -> Result<Geolocation, ReadError> {
     let mut found = Geolocation::default();
     for field in &FIELDS {
         let values = match find(reader, dimensions, grid, field) {
@@ -81,7 +84,7 @@ pub fn read(
                 how,
                 &mut found.sources,
                 problems,
-            ),
+            )?,
             None => {
                 problems.push(Problem::missing(&format!("no `{}`", field.name), "", field.cost));
                 None
@@ -98,7 +101,7 @@ pub fn read(
             _ => found.time = values,
         }
     }
-    found
+    Ok(found)
 }
 
 fn find(
@@ -127,10 +130,10 @@ fn read_field(
     evidence: Evidence,
     sources: &mut Vec<GeolocationSource>,
     problems: &mut Vec<Problem>,
-) -> Option<Vec<f64>> {
+) -> Result<Option<Vec<f64>>, ReadError> {
     let index = reader.index();
     let variable = &index.variables[place];
-    let spread = dimensions.spread(index, variable)?;
+    let Some(spread) = dimensions.spread(index, variable) else { return Ok(None) };
     let path = &variable.path;
     if evidence == Evidence::Name {
         let what = format!("`{}` is taken for {} by its name", path, field.name);
@@ -151,15 +154,16 @@ fn read_field(
                 path,
                 field.cost,
             ));
-            return None;
+            return Ok(None);
         }
     };
     let samples = match reader.read_all(variable) {
         Ok(samples) => samples,
+        Err(error) if error.fault.ends_the_file() => return Err(error),
         Err(error) => {
             let what = format!("`{}` cannot be read: {}", path, error.fault);
             problems.push(Problem::missing(&what, path, field.cost));
-            return None;
+            return Ok(None);
         }
     };
     let mut values = spread.over(grid, Decoder::of(variable).decode_all(&samples));
@@ -171,7 +175,7 @@ fn read_field(
         units: crate::system::clean_text(&units),
         place,
     });
-    Some(values)
+    Ok(Some(values))
 }
 
 type Conversion = Box<dyn Fn(f64) -> f64>;

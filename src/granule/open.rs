@@ -6,7 +6,7 @@ use super::apodisation;
 use super::band::Band;
 use super::cube::Cube;
 use super::decoder::Decoder;
-use super::error::GranuleError;
+use super::error::{GranuleError, Setback};
 use super::find_bands::{self, BandCandidate, Search};
 use super::footprint_dimensions::FootprintDimensions;
 use super::footprint_variables;
@@ -55,7 +55,7 @@ pub fn open(reader: FileReader) -> Result<Granule, GranuleError> {
         bands.push(band);
         sources.push(source);
     }
-    let geolocation = geolocation::read(&reader, &dimensions, &grid, &mut problems);
+    let geolocation = geolocation::read(&reader, &dimensions, &grid, &mut problems)?;
     let is_geolocation = |place| geolocation.sources.iter().any(|source| source.place == place);
     let footprint_variables =
         footprint_variables::find(index, &dimensions, &variables, is_geolocation);
@@ -101,7 +101,10 @@ fn choose(
                 join(index, &mut chosen, &candidate, spectral, band, problems)
             }
             Ok(None) => search.unusable.push(format!("`{}` has no spectral axis", variable.path)),
-            Err(reason) => search.unusable.push(format!("`{}`: {reason}", variable.path)),
+            Err(Setback::Variable(reason)) => {
+                search.unusable.push(format!("`{}`: {reason}", variable.path));
+            }
+            Err(Setback::File(error)) => return Err(error.into()),
         }
     }
     match chosen {
@@ -124,7 +127,7 @@ fn settle(
     reader: &FileReader,
     candidate: &BandCandidate,
     problems: &mut Vec<Problem>,
-) -> Result<Option<(usize, Band)>, String> {
+) -> Result<Option<(usize, Band)>, Setback> {
     let index = reader.index();
     let variable = &index.variables[candidate.variable];
     for axis_candidate in &candidate.axes {

@@ -1,5 +1,6 @@
 //! Which dimension of a variable is spectral, and which variable says where its channels lie.
 
+use super::error::Setback;
 use super::problem::Problem;
 use crate::netcdf_files::{FileIndex, FileReader, Variable};
 use crate::spectral::ChannelAxis;
@@ -90,14 +91,14 @@ fn rank(
 /// Reads an axis: wavenumbers in the file's order. None where its values are no spectral axis.
 ///
 /// # Errors
-/// The values could not be read, or are in part no wavenumbers; in words.
+/// The values could not be read, or are in part no wavenumbers.
 pub fn read(
     reader: &FileReader,
     candidate: &AxisCandidate,
     problems: &mut Vec<Problem>,
-) -> Result<Option<(ChannelAxis, SpectralUnit)>, String> {
+) -> Result<Option<(ChannelAxis, SpectralUnit)>, Setback> {
     let variable = &reader.index().variables[candidate.variable];
-    let samples = reader.read_all(variable).map_err(|error| error.fault.to_string())?;
+    let samples = reader.read_all(variable)?;
     let stored = super::decoder::Decoder::of(variable).decode_all(&samples);
     let unit = match candidate.unit {
         Some(unit) => unit,
@@ -123,7 +124,9 @@ pub fn read(
     }
     match ChannelAxis::new(wavenumbers) {
         Ok(axis) => Ok(Some((axis, unit))),
-        Err(error) => Err(format!("its spectral axis `{}`: {error}", variable.path)),
+        Err(error) => {
+            Err(Setback::Variable(format!("its spectral axis `{}`: {error}", variable.path)))
+        }
     }
 }
 

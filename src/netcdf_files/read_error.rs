@@ -115,6 +115,13 @@ pub enum ReadFault {
     NoReader(String),
 }
 
+impl ReadFault {
+    /// Whether the whole file is lost rather than one variable: asking on would only take more time.
+    pub fn ends_the_file(&self) -> bool {
+        !matches!(self, Self::Library { .. } | Self::MissingFilter { .. } | Self::BadRequest { .. })
+    }
+}
+
 impl ReadError {
     /// The error of a file.
     pub fn new(path: &Path, fault: ReadFault) -> Self {

@@ -245,6 +245,7 @@ fn packed_unsigned_shorts_and_quality_variables() {
     });
     let description = described(&file.path);
     assert_eq!(description["bands"][0]["storage"]["kind"], "short");
+    assert_eq!(description["bands"][0]["storage"]["packed"], true);
     let flags = &description["variables"][0];
     assert_eq!((flags["name"].as_str(), flags["role"].as_str()), (Some("DQF"), Some("quality")));
     assert_eq!(flags["meanings"], serde_json::json!(["good", "bad"]));

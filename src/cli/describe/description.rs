@@ -2,7 +2,7 @@
 
 use serde::Serialize;
 
-use crate::granule::{Band, FootprintVariable, Granule, Problem, Quantity};
+use crate::granule::{Band, Decoder, FootprintVariable, Granule, Problem, Quantity};
 use crate::netcdf_files::{FileIndex, Storage, Variable};
 use crate::system::clean_text;
 use crate::units::RadianceUnit;
@@ -73,6 +73,8 @@ pub struct BandDescription {
 #[derive(Debug, Serialize)]
 pub struct StorageDescription {
     pub kind: &'static str,
+    /// Whether scale_factor, add_offset or _Unsigned stand between stored and real values.
+    pub packed: bool,
     pub chunks: Option<Vec<usize>>,
     pub filters: Vec<String>,
     pub big_endian: bool,
@@ -184,8 +186,10 @@ impl BandDescription {
 
 impl StorageDescription {
     fn of(variable: &Variable, storage: &Storage) -> Self {
+        let decoder = Decoder::of(variable);
         Self {
             kind: variable.kind.label(),
+            packed: decoder.is_packed() || decoder.is_unsigned(),
             chunks: storage.chunks.clone(),
             filters: storage.filters.clone(),
             big_endian: storage.big_endian,

@@ -101,6 +101,9 @@ fn spacing(band: &BandDescription) -> String {
 fn storage(band: &BandDescription) -> String {
     let storage = &band.storage;
     let mut parts = vec![storage.kind.to_owned()];
+    if storage.packed {
+        parts.push("packed".into());
+    }
     if storage.big_endian {
         parts.push("big-endian".into());
     }
