@@ -76,8 +76,7 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     app.table = Table::Bench(Box::new(bench));
     match problems {
         0 => app.say(""),
-        1 => app.say("1 problem was found in the file; ! shows it"),
-        count => app.say(format!("{count} problems were found in the file; ! shows them")),
+        count => app.say(format!("{count} problems or guesses: !")),
     }
     jobs.extend(looking::spectrum(app));
     jobs.extend(looking::refresh_layer(app));

@@ -251,13 +251,9 @@ impl Bench {
         let values = self.layer.values.iter().enumerate();
         let footprints: FootprintSet =
             values.filter(|(_, value)| side.holds(**value)).map(|(one, _)| one).collect();
-        let words = format!(
-            "{} {} {}: {}",
-            self.layer.text,
-            side.relation.symbol(),
-            side.value,
-            footprints.len()
-        );
+        let count = footprints.len();
+        let (layer, relation) = (&self.layer.text, side.relation.symbol());
+        let words = format!("{count} where {layer} {relation} {}", side.value);
         Selection { footprints, words }
     }
 

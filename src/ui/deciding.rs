@@ -76,10 +76,8 @@ fn begin_box(app: &mut App) -> Vec<Job> {
         Some(_) => None,
         None => Some(bench.cursor),
     };
-    if bench.anchor.is_some() {
-        let (flag, cancel) = (hint_key(Action::Flag), hint_key(Action::Cancel));
-        app.say(format!("box: move the cursor, {flag} flags it, {cancel} lets it go"));
-    }
+    let begun = bench.anchor.is_some();
+    app.say(if begun { "box: move the cursor" } else { "box let go" });
     Vec::new()
 }
 
@@ -171,7 +169,7 @@ pub fn sign_off(app: &mut App, rest_looked_at: bool) -> Vec<Job> {
     let next = hint_key(Action::NextUnsigned);
     change(app, move |record, now| {
         record.sign_off(rest_looked_at, now)?;
-        Ok(format!("signed off; {next} goes to the next granule, u takes it back"))
+        Ok(format!("signed off; {next}: next granule"))
     })
 }
 

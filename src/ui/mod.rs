@@ -20,6 +20,8 @@ mod input;
 pub mod jobs;
 pub mod key;
 mod keyboard;
+#[cfg(test)]
+mod key_tests;
 pub mod keys;
 #[cfg(test)]
 mod keys_document;
@@ -36,6 +38,8 @@ mod shown_layer;
 mod signals;
 mod spectrum_window;
 mod terminal;
+#[cfg(test)]
+mod trial;
 mod turning;
 mod update;
 mod views;

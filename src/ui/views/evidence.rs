@@ -47,7 +47,12 @@ fn measured(label: &str, value: f64, unit: &str, bench: &Bench) -> EvidenceRow {
         let words = if bench.filling.done { "missing" } else { "reading…" };
         return fact(label, words, "");
     }
-    fact(label, super::number(value), unit)
+    let shown = match unit {
+        // To a hundredth: noise is larger in all but the best channels.
+        "K" => format!("{value:.2}"),
+        _ => super::number(value),
+    };
+    fact(label, shown, unit)
 }
 
 /// Flags, who has assessed the footprint, and the decisions behind that.
@@ -122,7 +127,7 @@ fn indices(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
         rows.push(match &index.values {
             Ok(values) => {
                 let value = values.get(bench.cursor).copied().unwrap_or(f64::NAN);
-                measured(&index.text, value, &index.unit, bench)
+                measured(&index.text.replace(' ', ""), value, &index.unit, bench)
             }
             Err(why) => EvidenceRow::Words(why.clone(), Tone::Faint),
         });
@@ -214,7 +219,7 @@ fn problems(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
     let count = bench.review.granule().problems().len();
     if count > 0 {
         section(rows, "File");
-        let words = format!("{count} problems or guesses; ! lists them");
+        let words = format!("{count} problems or guesses: !");
         rows.push(EvidenceRow::Words(words, Tone::Faint));
     }
     for note in &bench.layer.notes {

@@ -1,6 +1,5 @@
 //! The status line and the line of hints.
 
-use crate::flags::GranuleState;
 use crate::ui::app::App;
 use crate::ui::bench::{Bench, RecordState};
 use crate::ui::colour::Tone;
@@ -25,9 +24,6 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
         facts.push((format!("{} no flag", counts.no_flag), Tone::Plain));
         facts.push((format!("{} not assessed", counts.not_assessed), Tone::Plain));
-        let state = record.state().granule;
-        let tone = if state == GranuleState::SignedOff { Tone::Good } else { Tone::Faint };
-        facts.push((state.name().to_owned(), tone));
     }
     if let Some(fact) = filling(bench) {
         facts.push(fact);

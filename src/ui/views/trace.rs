@@ -71,7 +71,7 @@ impl TraceParts {
             title: &self.title,
             quantity: match bench {
                 Some(bench) if bench.radiance => "radiance",
-                _ => "brightness temperature",
+                _ => "BT",
             },
             unit: &self.unit,
             curves: &curves,
