@@ -43,10 +43,10 @@ fn one_footprint_a_box_and_a_side_are_flagged() {
     trial.keys("Down v Right Down f d");
     assert_eq!(trial.flagged("dust_or_ash"), [7, 8, 13, 14]);
     assert_eq!(trial.bench().anchor, None, "the box is let go");
-    // Footprint n is at 250 + n kelvins, so below 253 K lie 0, 1 and 2.
-    trial.keys("t Ctrl-U").types("< 253");
+    // Footprint n is at 250 + n kelvins, so below 252.5 K lie 0, 1 and 2.
+    trial.keys("t Ctrl-U").types("< 252.5");
     trial.press("Enter");
-    assert!(trial.screen(80, 24).contains("3 where bt(900) < 253"));
+    assert!(trial.screen(80, 24).contains("3 where bt(900) < 252.5"));
     trial.keys("s");
     assert_eq!(trial.flagged("so2"), [0, 1, 2]);
     assert_eq!(trial.record().counts().flagged, 3 + 4);
