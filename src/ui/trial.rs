@@ -156,9 +156,10 @@ impl Trial {
     /// Does the first job that waits and returns its answers, which have not been given yet.
     pub fn answers_of_next(&mut self) -> Vec<Answer> {
         let job = self.jobs.remove(0);
-        let answers = std::cell::RefCell::new(Vec::new());
-        work::perform(&job, &self.app.outside, &|answer| answers.borrow_mut().push(answer));
-        answers.into_inner()
+        let answers = std::sync::Mutex::new(Vec::new());
+        let keep = |answer| answers.lock().unwrap().push(answer);
+        work::perform(&job, &self.app.outside, &keep);
+        answers.into_inner().unwrap()
     }
 
     /// Does all jobs, and those that follow from them; waits until all decisions are kept or
