@@ -272,3 +272,21 @@ proptest! {
         }
     }
 }
+
+#[test]
+fn the_document_names_every_word_and_limit() {
+    let document = include_str!("../../../docs/layers.md");
+    for field in super::FRIENDLY_NAMES {
+        assert!(document.contains(&format!("`{}`", field.name)), "{}", field.name);
+    }
+    for (name, _) in super::functions() {
+        assert!(document.contains(&format!("`{name}(")), "{name}");
+    }
+    for limit in [
+        format!("at most {} characters", super::reading::LONGEST),
+        format!("{} operators", super::reading::MOST_OPERATORS),
+        format!("{} things inside one another", super::reading::DEEPEST),
+    ] {
+        assert!(document.contains(&limit), "{limit}");
+    }
+}

@@ -4,8 +4,10 @@ mod expression;
 mod grammar;
 mod mistake;
 mod near_names;
+mod pieces;
 mod place;
 mod print;
+mod reading;
 mod tree;
 mod vocabulary;
 
