@@ -141,8 +141,8 @@ impl Theme {
         let style = Style::new().add_modifier(Modifier::BOLD);
         match (self.depth, self.background) {
             (ColourDepth::None, _) => style.add_modifier(Modifier::REVERSED),
-            (ColourDepth::Sixteen, Background::Dark) => style.fg(Color::Black).bg(Color::White),
-            (ColourDepth::Sixteen, Background::Light) => style.fg(Color::White).bg(Color::Black),
+            // The one colour that no map of the sixteen has.
+            (ColourDepth::Sixteen, _) => style.fg(Color::White).bg(Color::Magenta),
             (_, Background::Dark) => style.fg(Color::Indexed(16)).bg(Color::Indexed(231)),
             (_, Background::Light) => style.fg(Color::Indexed(231)).bg(Color::Indexed(16)),
         }

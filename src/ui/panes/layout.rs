@@ -111,7 +111,7 @@ impl ScreenLayout {
         let trace = (room.height * 2 / 5).max(9);
         let above = room.height - trace;
         let tray = (room.width / 6).clamp(17, 30);
-        let evidence = (room.width / 3).clamp(27, 44);
+        let evidence = (room.width * 4 / 11).clamp(29, 46);
         let field = room.width - tray - evidence;
         let column = |x: u16, width: u16| Rect { x: room.x + x, width, height: above, ..room };
         self.tray = Some(column(0, tray));
@@ -152,8 +152,8 @@ mod tests {
     fn the_smallest_screen_shows_every_pane() {
         let layout = ScreenLayout::of(Rect::new(0, 0, 80, 24), None).unwrap();
         assert_eq!(layout.tray, Some(Rect::new(0, 0, 17, 13)));
-        assert_eq!(layout.field, Some(Rect::new(17, 0, 36, 13)));
-        assert_eq!(layout.evidence, Some(Rect::new(53, 0, 27, 13)));
+        assert_eq!(layout.field, Some(Rect::new(17, 0, 34, 13)));
+        assert_eq!(layout.evidence, Some(Rect::new(51, 0, 29, 13)));
         assert_eq!(layout.trace, Some(Rect::new(0, 13, 80, 9)));
         assert_eq!(layout.status, Rect::new(0, 22, 80, 1));
         assert_eq!(layout.command, Rect::new(0, 23, 80, 1));

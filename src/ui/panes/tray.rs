@@ -3,9 +3,10 @@
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::style::Modifier;
+use unicode_width::UnicodeWidthStr;
 
 use crate::ui::colour::{Theme, Tone};
-use crate::ui::widgets::{Frame, first_shown, put};
+use crate::ui::widgets::{Frame, cut_front, first_shown, put};
 
 /// Everything the Tray shows.
 #[derive(Clone, Debug)]
@@ -160,10 +161,24 @@ fn draw_name(
     let sign = row.state.sign(theme.ascii).to_string();
     put(right(1), &sign, theme.style(row.state.tone()), theme.ascii, buffer);
     let tone = if is_current { Tone::Strong } else { Tone::Plain };
-    put(right(3), &row.name, theme.style(tone), theme.ascii, buffer);
+    let name = abbreviated(&row.name, usize::from(right(3).width), theme.ascii);
+    put(right(3), &name, theme.style(tone), theme.ascii, buffer);
     if view.focused && index == view.cursor {
         buffer.set_style(right(1), Modifier::REVERSED);
     }
+}
+
+/// A name that is too long loses its extension and then its beginning: the names of one day's
+/// granules begin alike.
+fn abbreviated(name: &str, width: usize, ascii: bool) -> String {
+    if name.width() <= width {
+        return name.to_string();
+    }
+    let stem = match name.rsplit_once('.') {
+        Some((stem, _)) if !stem.is_empty() => stem,
+        _ => name,
+    };
+    cut_front(stem, width, ascii)
 }
 
 fn detail(row: &TrayRow, width: u16) -> String {
@@ -212,9 +227,9 @@ mod tests {
             screen.lines(),
             [
                 "─ Tray 2 of 3 ──────",
-                " ✓ brindle_lowen_c…",
+                " ✓ …dle_lowen_cloud",
                 "   12% flagged",
-                "▸◐ brindle_ketter_…",
+                "▸◐ …dle_ketter_dust",
                 "   <1% flagged",
                 " ! torn.nc",
                 "   can't be used",

@@ -18,4 +18,4 @@ pub(in crate::ui) use number::{short, ticks};
 pub(in crate::ui) use popup::Popup;
 #[cfg(test)]
 pub(in crate::ui) use screen::{Screen, THEME};
-pub(in crate::ui) use text::{clip, cut, first_shown, put, put_right, wrap};
+pub(in crate::ui) use text::{clip, cut, cut_front, first_shown, put, put_right, wrap};

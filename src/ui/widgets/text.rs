@@ -28,6 +28,23 @@ pub(in crate::ui) fn cut(text: &str, width: usize, ascii: bool) -> String {
     kept
 }
 
+/// The text if it fits, else its end with a sign that something was cut.
+pub(in crate::ui) fn cut_front(text: &str, width: usize, ascii: bool) -> String {
+    if ascii && !text.is_ascii() {
+        return cut_front(&spelled_out(text), width, ascii);
+    }
+    if text.width() <= width {
+        return text.to_string();
+    }
+    if width == 0 {
+        return String::new();
+    }
+    let mut kept = String::from(if ascii { '~' } else { '…' });
+    let ends = text.grapheme_indices(true).map(|(at, _)| &text[at..]);
+    kept.push_str(ends.into_iter().find(|end| end.width() < width).unwrap_or(""));
+    kept
+}
+
 /// A text in ASCII alone, for terminals without more.
 fn spelled_out(text: &str) -> String {
     let mut plain = String::with_capacity(text.len());
@@ -145,6 +162,7 @@ mod tests {
         assert_eq!(cut("Sea of Lowen", 7, true), "Sea of~");
         assert_eq!(cut("輝度温度", 5, false), "輝度…", "each sign is two columns wide");
         assert_eq!(cut("輝度温度", 0, false), "");
+        assert_eq!(cut_front("Sea of Lowen", 7, false), "… Lowen");
         assert_eq!(cut("11.1 µm · 287 K", 20, true), "11.1 um - 287 K");
     }
 
@@ -167,6 +185,7 @@ mod tests {
         #[test]
         fn nothing_is_ever_wider_than_asked_for(text in "\\PC{0,40}", width in 0usize..30) {
             prop_assert!(cut(&text, width, false).width() <= width);
+            prop_assert!(cut_front(&text, width, false).width() <= width);
             for line in wrap(&text, width) {
                 // A sign that is wider than the line can't be broken.
                 let widest = line.graphemes(true).map(|sign| sign.width()).max();

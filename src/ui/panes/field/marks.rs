@@ -45,16 +45,16 @@ fn draw_cursor(
     buffer: &mut Buffer,
 ) {
     put_mark((x, y), if theme.ascii { 'X' } else { '╋' }, theme, buffer);
-    let [right, down] = if theme.ascii { ['>', 'v'] } else { ['▸', '▾'] };
-    let ticks = [((geometry.area.x.saturating_sub(1), y), right), ((x, pane.y), down)];
-    for ((x, y), sign) in ticks {
+    let [right, down] = if theme.ascii { [">", "v"] } else { ["▸", "▾"] };
+    let free = if theme.ascii { [" ", "-", "="] } else { [" ", "─", "━"] };
+    let ticks = [(geometry.area.x.saturating_sub(1), y, right), (x, pane.y, down)];
+    for (x, y, sign) in ticks {
         if !pane.contains((x, y).into()) || geometry.area.contains((x, y).into()) {
             continue;
         }
         let Some(cell) = buffer.cell_mut((x, y)) else { continue };
-        if matches!(cell.symbol(), " " | "─" | "━" | "-" | "=") {
-            cell.reset();
-            cell.set_char(sign).set_style(theme.style(Tone::Accent));
+        if free.contains(&cell.symbol()) {
+            cell.set_symbol(sign).set_style(theme.style(Tone::Accent));
         } else {
             // A letter of the title stays readable.
             cell.modifier.toggle(Modifier::REVERSED);

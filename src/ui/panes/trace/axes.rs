@@ -4,7 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use unicode_width::UnicodeWidthStr;
 
-use super::plot::Plot;
+use super::plot::{Plot, UNIT};
 use crate::ui::colour::{Theme, Tone};
 use crate::ui::widgets::{put, put_right, ticks};
 
@@ -43,7 +43,7 @@ fn draw_values(plot: &Plot, unit: &str, theme: &Theme, buffer: &mut Buffer) {
     }
     // The unit stands above the values, where the line of wavelengths leaves its corner free.
     let corner = Rect { y: plot.top.y, ..labels };
-    if unit.width() <= usize::from(corner.width) {
+    if unit.width() <= UNIT.min(usize::from(corner.width)) {
         put_right(corner, unit, style, theme.ascii, buffer);
     }
 }

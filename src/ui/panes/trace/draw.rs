@@ -4,7 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use unicode_width::UnicodeWidthStr;
 
-use super::plot::Plot;
+use super::plot::{Plot, UNIT};
 use super::{TraceView, axes, bands, curves};
 use crate::ui::colour::{Theme, Tone};
 use crate::ui::widgets::{Frame, cut, put, put_right};
@@ -50,15 +50,19 @@ pub fn wavenumber_at(view: &TraceView<'_>, area: Rect, column: u16, row: u16) ->
 fn titles(view: &TraceView<'_>, width: u16, ascii: bool) -> (String, String) {
     let room = usize::from(width).saturating_sub(" Trace ".len() + 4);
     let words = view.channel.map_or("", |channel| channel.words);
-    let whole = match (view.title, view.quantity) {
-        (title, "") => title.to_string(),
-        ("", quantity) => quantity.to_string(),
-        (title, quantity) => format!("{title}: {quantity}"),
+    // A long unit finds no room above the values.
+    let unit = if view.unit.width() > UNIT { view.unit } else { "" };
+    let parts = |parts: [&str; 3]| {
+        let said: Vec<&str> = parts.into_iter().filter(|part| !part.is_empty()).collect();
+        said.join(", ")
     };
     let gap = if words.is_empty() { 0 } else { 4 };
-    let title = if whole.width() + gap + words.width() <= room { &whole } else { view.title };
+    let title = [parts([view.title, view.quantity, unit]), parts([view.title, "", unit])]
+        .into_iter()
+        .find(|title| title.width() + gap + words.width() <= room)
+        .unwrap_or_else(|| view.title.to_string());
     let words = cut(words, room.saturating_sub(gap), ascii);
-    let title = cut(title, room.saturating_sub(gap + words.width()), ascii);
+    let title = cut(&title, room.saturating_sub(gap + words.width()), ascii);
     (title, words)
 }
 
@@ -127,7 +131,7 @@ mod tests {
         assert_eq!(
             screen.lines(),
             [
-                "- Trace 12, 3: BT ----------------------------",
+                "- Trace 12, 3, BT ----------------------------",
                 "  K      15   14    13    12      11       um",
                 "300+                    *********************",
                 "   |",
@@ -204,7 +208,7 @@ mod tests {
         for (width, line) in [
             (
                 80,
-                "─ Trace line 12, position 3: brightness temperature ─── 900.00 cm-1 · 290.00 K ─",
+                "─ Trace line 12, position 3, brightness temperature ─── 900.00 cm-1 · 290.00 K ─",
             ),
             (60, "─ Trace line 12, position 3 ─────── 900.00 cm-1 · 290.00 K ─"),
             (46, "─ Trace line 12,… ─── 900.00 cm-1 · 290.00 K ─"),

@@ -2,11 +2,16 @@
 
 use ratatui::layout::Rect;
 
+use unicode_width::UnicodeWidthStr;
+
 use super::TraceView;
 use crate::ui::widgets::ticks;
 
 /// A line of its own for the names of bands needs a plot of at least this height beside it.
 const ROOM_FOR_BANDS: u16 = 7;
+
+/// A unit up to this width stands above the values.
+pub(super) const UNIT: usize = 6;
 
 /// The parts of the plot.
 pub(super) struct Plot {
@@ -44,7 +49,8 @@ impl Plot {
         let values: Vec<(f64, String)> =
             values.into_iter().map(|value| (value, format!("{value:.decimals$}"))).collect();
         let widest = values.iter().map(|(_, text)| text.len()).max().unwrap_or(0);
-        let labels = (widest as u16).max(view.unit.len().min(4) as u16).min(room.width / 3);
+        let unit = if view.unit.width() > UNIT { 0 } else { view.unit.width() };
+        let labels = (widest.max(unit) as u16).min(room.width / 3);
         let area = Rect {
             x: room.x + labels + 1,
             y: room.y + above,
