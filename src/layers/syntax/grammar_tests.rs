@@ -180,9 +180,9 @@ fn trees() -> impl Strategy<Value = Node> {
         |(one, other, unit, other_unit)| {
             let (one, other) = (Place::new(one, unit)?, Place::new(other, other_unit)?);
             let ordered = one.wavenumber() < other.wavenumber();
-            (one.value() != other.value()).then(|| {
-                if ordered { Where::Between(one, other) } else { Where::Between(other, one) }
-            })
+            let between =
+                if ordered { Where::Between(one, other) } else { Where::Between(other, one) };
+            (one.value() != other.value()).then_some(between)
         },
     );
     let quantity = prop_oneof![Just(Quantity::BrightnessTemperature), Just(Quantity::Radiance)];
