@@ -8,8 +8,10 @@ mod attributes;
 mod channel_axes;
 mod exporter;
 mod mask;
+mod mask_layout;
 #[cfg(test)]
 mod mask_tests;
+mod mask_values;
 mod of_granule;
 mod provenance;
 mod source;

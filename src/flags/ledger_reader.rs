@@ -2,17 +2,20 @@
 
 use std::collections::BTreeMap;
 use std::fmt;
-use std::io::{self, BufRead, BufReader, Read};
+use std::io;
 use std::path::{Path, PathBuf};
 
 use super::ledger_line::{Header, HeaderError, read_decision};
+use super::ledger_lines::Lines;
 use super::{Campaign, Decision, DecisionId, GranuleIdentity};
 use crate::system::clean_text;
 
-/// A decision about a million footprints, every other one, is about 7 MB.
-const LONGEST_LINE: u64 = 64 << 20;
 /// A hundred thousand decisions a day for ten days.
 const MOST_DECISIONS: usize = 1_000_000;
+/// Two decisions of one name are an accident; many are no ledger of ours.
+const MOST_OF_ONE_NAME: usize = 8;
+/// After so many problems the rest is only counted.
+const MOST_PROBLEMS: usize = 1000;
 /// After so many broken lines the rest of a file is only counted.
 const MOST_BROKEN: usize = 20;
 
@@ -80,12 +83,18 @@ struct Gathering {
     decisions: BTreeMap<DecisionId, Vec<Decision>>,
     count: usize,
     problems: Vec<LedgerProblem>,
+    /// Problems beyond those listed.
+    unlisted: usize,
     files: usize,
 }
 
 impl Gathering {
     fn problem(&mut self, path: &Path, line: u64, what: String, loss: Loss) {
         let what = clean_text(&what);
+        if self.problems.len() >= MOST_PROBLEMS && loss != Loss::File {
+            self.unlisted += 1;
+            return;
+        }
         self.problems.push(LedgerProblem { path: path.to_owned(), line, what, loss });
     }
 
@@ -187,6 +196,10 @@ impl Gathering {
         if same_name.contains(&decision) {
             return;
         }
+        if same_name.len() >= MOST_OF_ONE_NAME {
+            let what = "does not count: too many decisions have its number".to_owned();
+            return self.problem(path, line, what, Loss::Line);
+        }
         let doubled = !same_name.is_empty();
         same_name.push(decision);
         self.count += 1;
@@ -199,62 +212,11 @@ impl Gathering {
     fn finish(self) -> LedgerReading {
         let mut decisions: Vec<_> = self.decisions.into_values().flatten().collect();
         decisions.sort_by(|one, other| one.order().cmp(&other.order()));
-        LedgerReading { decisions, problems: self.problems, files: self.files }
-    }
-}
-
-struct Line<'a> {
-    number: u64,
-    /// Without its line break; or why there is none.
-    text: Result<&'a [u8], String>,
-    /// It has no line break: its writer was stopped.
-    torn: bool,
-}
-
-struct Lines {
-    input: BufReader<std::fs::File>,
-    buffer: Vec<u8>,
-    number: u64,
-}
-
-impl Lines {
-    fn new(file: std::fs::File) -> Self {
-        Self { input: BufReader::new(file), buffer: Vec::new(), number: 0 }
-    }
-
-    fn next(&mut self) -> io::Result<Option<Line<'_>>> {
-        self.buffer.clear();
-        self.number += 1;
-        let number = self.number;
-        let mut limited = (&mut self.input).take(LONGEST_LINE);
-        if limited.read_until(b'\n', &mut self.buffer)? == 0 {
-            return Ok(None);
+        let mut problems = self.problems;
+        if let (Some(last), true) = (problems.last().cloned(), self.unlisted > 0) {
+            let what = format!("and {} more problems of these ledgers", self.unlisted);
+            problems.push(LedgerProblem { line: 0, what, loss: Loss::Line, ..last });
         }
-        if self.buffer.last() == Some(&b'\n') {
-            self.buffer.pop();
-            return Ok(Some(Line { number, text: Ok(&self.buffer), torn: false }));
-        }
-        if (self.buffer.len() as u64) < LONGEST_LINE {
-            return Ok(Some(Line { number, text: Ok(&self.buffer), torn: true }));
-        }
-        let torn = self.skip_rest()?;
-        Ok(Some(Line { number, text: Err("it is far too long".to_owned()), torn }))
-    }
-
-    /// Skips to the next line; whether there is none.
-    fn skip_rest(&mut self) -> io::Result<bool> {
-        loop {
-            let (found, used) = match self.input.fill_buf()? {
-                [] => return Ok(true),
-                some => match some.iter().position(|&byte| byte == b'\n') {
-                    Some(at) => (true, at + 1),
-                    None => (false, some.len()),
-                },
-            };
-            self.input.consume(used);
-            if found {
-                return Ok(false);
-            }
-        }
+        LedgerReading { decisions, problems, files: self.files }
     }
 }

@@ -246,6 +246,26 @@ fn copies_count_once_and_other_decisions_of_the_same_name_count_too() {
     assert!(both.problems[0].what.contains("number of another decision"));
 }
 
+/// Damage of any size is told in a bounded number of words.
+#[test]
+fn many_broken_and_doubled_lines_are_only_counted() {
+    let fixture = Fixture::new();
+    let (path, text) = fixture.three_decisions();
+    let doubled: String = (0..3000)
+        .map(|at| {
+            format!(
+                "{{\"sequence\":1,\"at\":\"2026-01-01T00:00:{:02}Z\",\"act\":\"reopen\"}}\n",
+                at % 60
+            )
+        })
+        .collect();
+    std::fs::write(&path, format!("{text}{}{doubled}", "broken\n".repeat(5000))).unwrap();
+    let reading = fixture.read();
+    assert!(reading.problems.len() < 1100, "{}", reading.problems.len());
+    assert!(reading.problems.iter().any(|problem| problem.what.contains("more problems")));
+    assert!((3..20).contains(&reading.decisions.len()), "{}", reading.decisions.len());
+}
+
 /// Two hosts whose clocks disagree: who saw a decision decides after it.
 #[test]
 fn a_decision_comes_after_those_its_writer_saw() {

@@ -3,15 +3,13 @@
 //! The keys never wait for a disk: `append` gives the finished decision back at once, and the
 //! thread reports when it is kept.
 
-use std::io;
-use std::path::PathBuf;
 use std::sync::atomic::{AtomicU32, Ordering};
 use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, channel};
 use std::time::Duration;
 
 use jiff::{SignedDuration, Timestamp};
 
-use super::ledger_file::LedgerFile;
+use super::ledger_keeper::{Keeper, Order};
 use super::ledger_line::{Header, LEDGER_FORMAT, LEDGER_VERSION};
 use super::{
     Act, Author, Campaign, CampaignError, Decision, DecisionId, GranuleIdentity, Origin,
@@ -44,12 +42,6 @@ pub struct NotKept {
     pub pending: usize,
     /// Why.
     pub message: String,
-}
-
-enum Order {
-    Keep(Box<Decision>),
-    Retry,
-    Close,
 }
 
 /// Writes decisions of one author about one granule.
@@ -209,83 +201,4 @@ impl LedgerWriter {
         let message = self.last_failure.unwrap_or_else(|| "the writer ended".to_owned());
         Err(NotKept { pending: self.pending.len(), message })
     }
-}
-
-/// The thread's side.
-struct Keeper {
-    folder: PathBuf,
-    file_name: String,
-    header: Header,
-    file: Option<LedgerFile>,
-    pending: Vec<Decision>,
-    report: Sender<LedgerEvent>,
-}
-
-impl Keeper {
-    fn run(mut self, orders: &Receiver<Order>) {
-        while let Ok(first) = orders.recv() {
-            // One wait for the disk keeps all that has gathered meanwhile.
-            let mut close = false;
-            for order in std::iter::once(first).chain(orders.try_iter()) {
-                match order {
-                    Order::Keep(decision) => self.pending.push(*decision),
-                    Order::Retry => {}
-                    Order::Close => close = true,
-                }
-            }
-            self.keep_pending();
-            if close {
-                return;
-            }
-        }
-        self.keep_pending();
-    }
-
-    fn keep_pending(&mut self) {
-        if self.pending.is_empty() {
-            return;
-        }
-        // A report that nobody receives any more is no failure: the writer was dropped.
-        match self.write_pending() {
-            Ok(()) => {
-                for decision in self.pending.drain(..) {
-                    let _ = self.report.send(LedgerEvent::Kept(decision.id));
-                }
-            }
-            Err(error) => {
-                if let Some(file) = self.file.take() {
-                    file.give_up();
-                }
-                let pending = self.pending.iter().map(|decision| decision.id.clone()).collect();
-                let message = failure_message(&error, &self.folder);
-                let _ = self.report.send(LedgerEvent::Failed { pending, message });
-            }
-        }
-    }
-
-    fn write_pending(&mut self) -> io::Result<()> {
-        let file = match &mut self.file {
-            Some(file) => file,
-            empty => empty.insert(LedgerFile::create(&self.folder, &self.file_name, &self.header)?),
-        };
-        file.append(&self.pending)
-    }
-}
-
-fn failure_message(error: &io::Error, folder: &std::path::Path) -> String {
-    let advice = match error.kind() {
-        io::ErrorKind::StorageFull | io::ErrorKind::QuotaExceeded => {
-            "free some space there, then try again"
-        }
-        io::ErrorKind::FileTooLarge => "raise the limit on file sizes, then try again",
-        io::ErrorKind::PermissionDenied | io::ErrorKind::ReadOnlyFilesystem => {
-            "make the folder writable, then try again"
-        }
-        _ => "see that the folder can be reached, then try again",
-    };
-    format!(
-        "not yet on the disk in {}: {error}. The decisions stay pending while the program runs: \
-         {advice}",
-        folder.display()
-    )
 }

@@ -12,14 +12,19 @@ mod campaign;
 mod campaign_settings;
 mod decision;
 mod footprint_set;
+mod granule_state;
 mod history;
 mod ledger_file;
+mod ledger_keeper;
 mod ledger_line;
+mod ledger_lines;
 mod ledger_reader;
 #[cfg(test)]
 mod ledger_tests;
 mod ledger_writer;
 mod places;
+mod plane;
+mod protected_parts;
 mod replay;
 #[cfg(test)]
 mod replay_tests;

@@ -3,12 +3,15 @@
 //! The result depends on the set of decisions alone, not on the order in which files were read:
 //! decisions are sorted by (time, writer, sequence), and revocations count wherever they stand.
 
-use std::collections::{BTreeMap, HashMap};
+use std::collections::BTreeMap;
 
+use super::granule_state::granule_state;
 use super::history::Ordered;
+use super::plane::Plane;
+use super::protected_parts::protected_parts;
 use super::{
-    Act, ChannelName, Decision, DecisionId, FlagState, FootprintSet, GranuleState, ReviewState,
-    Scope, Vocabulary,
+    Act, ChannelName, Decision, FlagState, FootprintSet, GranuleState, ReviewState, Scope,
+    Vocabulary,
 };
 use crate::system::clean_text;
 
@@ -26,75 +29,16 @@ impl FlagState {
     /// withdrawal makes a footprint decided only where the flag stood.
     pub fn replay(footprints: usize, decisions: &[Decision], vocabulary: &Vocabulary) -> Self {
         let ordered = Ordered::new(decisions);
-        let protected = ProtectedParts::new(&ordered);
+        let protected = protected_parts(footprints, &ordered);
         let mut fold = Fold::new(footprints, vocabulary);
         for (at, decision) in ordered.decisions.iter().enumerate() {
             if ordered.standing[at] {
                 fold.apply(decision, None);
-            } else if let Some(part) = protected.part(at, &ordered) {
-                fold.apply(decision, Some(&part));
+            } else if let Some(part) = protected.get(&at) {
+                fold.apply(decision, Some(part));
             }
         }
         fold.finish(granule_state(&ordered))
-    }
-}
-
-/// What stays of a test's decision that a test revoked: the footprints that a person had assessed
-/// in between, with the flag before their eyes.
-struct ProtectedParts<'a> {
-    /// Position and footprints of persons' standing assessments, in order.
-    assessments: Vec<(usize, &'a FootprintSet)>,
-    /// Per revoked decision: its first standing revocation, if only tests revoked it.
-    revoked_at: HashMap<&'a DecisionId, Option<usize>>,
-}
-
-impl<'a> ProtectedParts<'a> {
-    fn new(ordered: &Ordered<'a>) -> Self {
-        let mut assessments = Vec::new();
-        let mut revoked_at = HashMap::new();
-        for (at, decision) in ordered.standing_ones() {
-            match &decision.act {
-                Act::Assess { footprints } | Act::SignOff { rest_assessed: footprints, .. }
-                    if decision.by_person() =>
-                {
-                    assessments.push((at, footprints));
-                }
-                Act::Revoke { decision: target } => {
-                    let first = revoked_at.entry(target).or_insert(Some(at));
-                    if decision.by_person() {
-                        *first = None;
-                    }
-                }
-                _ => {}
-            }
-        }
-        Self { assessments, revoked_at }
-    }
-
-    fn part(&self, at: usize, ordered: &Ordered<'a>) -> Option<FootprintSet> {
-        let decision = ordered.decisions[at];
-        let footprints = decision.act.footprints()?;
-        if decision.by_person() || self.assessments.is_empty() {
-            return None;
-        }
-        let until = (*self.revoked_at.get(&decision.id)?)?;
-        let between = self.assessments.iter().filter(|(when, _)| (at..until).contains(when));
-        let parts = between.flat_map(|(_, set)| set.intersection(footprints).runs().to_vec());
-        let part = FootprintSet::from_ranges(parts);
-        (!part.is_empty()).then_some(part)
-    }
-}
-
-/// Flags of one plane (the whole footprint, or one band), and about which of them persons spoke.
-#[derive(Clone)]
-struct Plane {
-    flags: Vec<u32>,
-    spoken: Vec<u32>,
-}
-
-impl Plane {
-    fn new(footprints: usize) -> Self {
-        Self { flags: vec![0; footprints], spoken: vec![0; footprints] }
     }
 }
 
@@ -164,58 +108,41 @@ impl<'a> Fold<'a> {
                 self.problem(format!("more than {MOST_BANDS} bands named"));
                 return;
             };
-            for footprint in at.iter() {
-                if person {
-                    plane.flags[footprint] |= bit;
-                    plane.spoken[footprint] |= bit;
-                } else if !settled[footprint] && plane.spoken[footprint] & bit == 0 {
-                    plane.flags[footprint] |= bit;
-                }
+            for run in at.runs() {
+                plane.flag(run.clone(), bit, (!person).then_some(settled));
             }
         }
-        let reached = reached(person);
-        for footprint in at.iter() {
-            self.review[footprint] = self.review[footprint].max(reached);
-        }
+        self.reach(at, person);
     }
 
     fn withdraw(&mut self, bit: u32, at: &FootprintSet, bands: Option<&[String]>, person: bool) {
-        let mut touched: Vec<&mut Plane> = Vec::new();
-        match bands {
-            None => {
-                touched.push(&mut self.whole);
-                touched.extend(self.bands.values_mut());
-            }
-            Some(names) => {
-                let named = self.bands.iter_mut().filter(|(name, _)| names.contains(name));
-                touched.extend(named.map(|(_, plane)| plane));
-            }
-        }
-        for plane in touched {
-            for footprint in at.iter() {
-                let held = plane.spoken[footprint] & bit != 0 || self.settled[footprint];
-                if !person && held {
-                    continue;
-                }
-                let stood = plane.flags[footprint] & bit != 0;
-                plane.flags[footprint] &= !bit;
+        let named = |name: &String| bands.is_none_or(|names| names.contains(name));
+        let whole = bands.is_none().then_some(&mut self.whole);
+        let limited = self.bands.iter_mut().filter(|(name, _)| named(name)).map(|(_, plane)| plane);
+        for plane in whole.into_iter().chain(limited) {
+            for run in at.runs() {
                 if person {
-                    plane.spoken[footprint] |= bit;
-                    // Where nothing stood, nothing was judged: a box drawn over footprints that
-                    // nobody assessed must not make them usable.
-                    if stood {
-                        self.review[footprint] = ReviewState::DecidedByPerson;
-                    }
+                    plane.withdraw_for_person(run.clone(), bit, &mut self.review);
+                } else {
+                    plane.withdraw_for_test(run.clone(), bit, &self.settled);
                 }
             }
         }
     }
 
     fn assess(&mut self, at: &FootprintSet, person: bool) {
-        let reached = reached(person);
-        for footprint in at.iter() {
-            self.review[footprint] = self.review[footprint].max(reached);
-            self.settled[footprint] |= person;
+        self.reach(at, person);
+        if person {
+            at.runs().iter().for_each(|run| self.settled[run.clone()].fill(true));
+        }
+    }
+
+    /// Notes who has assessed footprints; a person's word is never lowered.
+    fn reach(&mut self, at: &FootprintSet, person: bool) {
+        let reached =
+            if person { ReviewState::DecidedByPerson } else { ReviewState::AssessedByTest };
+        for run in at.runs() {
+            self.review[run.clone()].iter_mut().for_each(|state| *state = (*state).max(reached));
         }
     }
 
@@ -303,58 +230,4 @@ fn plane<'p>(
     }
     let footprints = whole.flags.len();
     Some(bands.entry(name.to_owned()).or_insert_with(|| Plane::new(footprints)))
-}
-
-fn reached(person: bool) -> ReviewState {
-    if person { ReviewState::DecidedByPerson } else { ReviewState::AssessedByTest }
-}
-
-/// How far the granule has come: what the latest standing sign-off, setting aside or reopening
-/// says, unless a person changed flags since.
-fn granule_state(ordered: &Ordered<'_>) -> GranuleState {
-    let mut last = None;
-    for (at, decision) in ordered.standing_ones().filter(|(_, decision)| decision.by_person()) {
-        match decision.act {
-            Act::SignOff { .. } => last = Some((at, GranuleState::SignedOff)),
-            Act::SetAside => last = Some((at, GranuleState::SetAside)),
-            Act::Reopen => last = Some((at, GranuleState::InHand)),
-            _ => {}
-        }
-    }
-    match last {
-        Some((at, _)) if changed_since(ordered, at) => GranuleState::InHand,
-        Some((_, state)) => state,
-        None if touched(ordered) => GranuleState::InHand,
-        None => GranuleState::Untouched,
-    }
-}
-
-/// Whether a person has decided anything that stands. Undoing one's own decisions leaves a granule
-/// as untouched as before; taking back a test's is a decision.
-fn touched(ordered: &Ordered<'_>) -> bool {
-    let mut persons = ordered.standing_ones().filter(|(_, decision)| decision.by_person());
-    persons.any(|(_, decision)| match &decision.act {
-        Act::Revoke { decision: target } => {
-            ordered.decisions.iter().any(|one| one.id == *target && !one.by_person())
-        }
-        _ => true,
-    })
-}
-
-/// Whether a person changed flags after the decision at `since`, by a new decision or by taking
-/// back, or putting back, an old one.
-fn changed_since(ordered: &Ordered<'_>, since: usize) -> bool {
-    let changes = |at: usize| ordered.decisions[at].act.changes_flags();
-    let by_person = |at: usize| ordered.decisions[at].by_person();
-    let count = ordered.decisions.len();
-    if (since + 1..count).any(|at| ordered.standing[at] && changes(at) && by_person(at)) {
-        return true;
-    }
-    let mut revokers = (since + 1..count)
-        .filter(|&at| by_person(at) && matches!(ordered.decisions[at].act, Act::Revoke { .. }));
-    if revokers.next().is_none() {
-        return false;
-    }
-    let before = super::history::standing_among(&ordered.decisions[..=since]);
-    (0..since).any(|at| changes(at) && before[at] != ordered.standing[at])
 }
