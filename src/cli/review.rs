@@ -4,6 +4,7 @@ use std::path::PathBuf;
 
 use super::Exit;
 use super::inputs::{Inputs, Reading};
+use super::surroundings;
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
@@ -11,7 +12,7 @@ pub struct Arguments {
     #[command(flatten)]
     inputs: Inputs,
     /// The campaign folder: settings, ledgers, exports; made where there is none
-    #[arg(long, value_name = "DIR", default_value = "radsieve-campaign")]
+    #[arg(long, value_name = "DIR", default_value = surroundings::DEFAULT_CAMPAIGN)]
     campaign: PathBuf,
     /// The layer to begin with, such as bt(900) or bt(900)-bt(831)
     #[arg(long, value_name = "EXPR")]

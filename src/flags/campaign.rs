@@ -1,5 +1,6 @@
 //! The campaign folder: settings, ledgers, places. The archive itself is never written to.
 
+use std::collections::BTreeSet;
 use std::io;
 use std::path::{Path, PathBuf};
 
@@ -113,6 +114,16 @@ impl Campaign {
         &self.settings
     }
 
+    /// The stems (as [`file_name_part`] writes them) of all granules that had ledgers when their
+    /// ledgers were begun. Costs one look at a folder: no granule and no ledger is opened.
+    pub fn ledger_stems(&self) -> BTreeSet<String> {
+        let Ok(entries) = std::fs::read_dir(self.folder.join(LEDGERS)) else {
+            return BTreeSet::new();
+        };
+        let names = entries.flatten().map(|entry| entry.file_name().to_string_lossy().into_owned());
+        names.filter_map(|name| Some(name.rsplit_once('-')?.0.to_owned())).collect()
+    }
+
     /// The folders that hold ledgers of a granule, sorted. More than one where the file was renamed
     /// and two people began at the same moment.
     pub(super) fn ledger_folders(&self, granule: &GranuleIdentity) -> io::Result<Vec<PathBuf>> {
@@ -192,6 +203,7 @@ mod tests {
         let folder = campaign.ledger_folder(&granule).unwrap();
         assert!(folder.ends_with("ledgers/lowen_001-0123456789ab"), "{folder:?}");
         std::fs::create_dir(&folder).unwrap();
+        assert_eq!(campaign.ledger_stems().into_iter().collect::<Vec<_>>(), ["lowen_001"]);
         granule.name = "renamed.nc".to_owned();
         assert_eq!(campaign.ledger_folder(&granule).unwrap(), folder);
     }

@@ -2,6 +2,8 @@
 
 use std::path::PathBuf;
 
+use crate::flags::{Campaign, GranuleState, file_name_part};
+
 use super::entry::{Entry, Standing, names};
 
 /// The granules in hand.
@@ -45,6 +47,18 @@ impl Tray {
         }
     }
 
+    /// Takes granules for untouched that no ledger of the campaign goes by the name of. One that
+    /// was renamed since shows its true state when it is opened, because ledgers go by content.
+    pub fn take_for_untouched(&mut self, campaign: &Campaign) {
+        let stems = campaign.ledger_stems();
+        for entry in self.entries.iter_mut().filter(|entry| entry.standing.is_none()) {
+            let stem = entry.path.file_stem().unwrap_or_default().to_string_lossy();
+            if !stems.contains(&file_name_part(&stem)) {
+                entry.standing = Some(Standing { state: GranuleState::Untouched, counts: None });
+            }
+        }
+    }
+
     /// Takes down why a granule can't be used, or that it can after all.
     pub fn set_error(&mut self, number: usize, error: Option<String>) {
         if let Some(entry) = self.entries.get_mut(number) {
@@ -82,7 +96,6 @@ impl Tray {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::flags::GranuleState;
 
     fn tray() -> Tray {
         let mut tray = Tray::new(["a.nc", "b.nc", "c.nc", "d.nc"].map(PathBuf::from).to_vec());

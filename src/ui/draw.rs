@@ -8,7 +8,6 @@ use super::app::App;
 use super::overlay::Overlay;
 use super::panes::evidence::EvidenceView;
 use super::panes::status::{Hint, StatusView};
-use super::panes::tray::TrayView;
 use super::panes::{self, Pane, ScreenLayout};
 use super::views::{self, FieldParts, TraceParts};
 
@@ -28,12 +27,7 @@ pub fn draw(app: &App, frame: &mut Frame<'_>) {
 fn draw_panes(app: &App, layout: &ScreenLayout, buffer: &mut Buffer) {
     let theme = &app.theme;
     if let Some(area) = layout.tray {
-        let rows = views::tray_rows(app);
-        let current = app.current_entry().unwrap_or(0);
-        let cursor = if app.focus == Pane::Tray { app.tray_cursor } else { current };
-        let focused = app.focus == Pane::Tray;
-        let view = TrayView { rows: &rows, current, cursor, focused };
-        panes::tray::draw(&view, theme, area, buffer);
+        views::draw_tray(app, area, buffer);
     }
     if let Some(area) = layout.field {
         let parts = FieldParts::of(app);

@@ -103,12 +103,20 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
             let Some(footprint) = views::footprint_under(app, mouse.column, mouse.row) else {
                 return Vec::new();
             };
-            if mouse.button == Button::Drag {
-                if let Some(bench) = app.bench_mut() {
-                    bench.anchor.get_or_insert(bench.cursor);
-                }
+            if mouse.button == Button::Drag
+                && let Some(bench) = app.bench_mut()
+            {
+                bench.anchor.get_or_insert(bench.cursor);
             }
             go(app, footprint)
+        }
+        (Button::Press, Pane::Tray) => click_in_tray(app, mouse),
+        (Button::Press | Button::Drag, Pane::Trace) => {
+            app.focus = Pane::Trace;
+            match views::wavenumber_under(app, mouse.column, mouse.row) {
+                Some(wavenumber) => looking::go_to_channel(app, wavenumber),
+                None => Vec::new(),
+            }
         }
         (Button::Press, pane) => {
             app.focus = pane;
@@ -116,4 +124,13 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
         }
         _ => Vec::new(),
     }
+}
+
+/// The first click on a granule chooses it, the second opens it.
+fn click_in_tray(app: &mut App, mouse: Mouse) -> Vec<Job> {
+    let Some(row) = views::tray_row_under(app, mouse.column, mouse.row) else { return Vec::new() };
+    let chosen = app.focus == Pane::Tray && app.tray_cursor == row;
+    app.focus = Pane::Tray;
+    app.tray_cursor = row;
+    if chosen { super::turning::turn(app, Action::Open) } else { Vec::new() }
 }

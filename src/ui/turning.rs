@@ -4,13 +4,15 @@ use super::app::{App, Direction, Table};
 use super::bench::RecordState;
 use super::colour::Tone;
 use super::jobs::Job;
-use super::keys::Action;
+use super::keys::{Action, hint_key};
 use super::overlay::Overlay;
 use super::panes::Pane;
 
 /// The first jobs: look what the ledgers say about all granules, and open the first that is not
-/// signed off. Granules that no ledger can be about are known to be untouched without looking.
+/// signed off. Granules that no ledger goes by the name of are taken for untouched without looking.
 pub fn start(app: &mut App) -> Vec<Job> {
+    let outside = std::sync::Arc::clone(&app.outside);
+    app.tray.take_for_untouched(&outside.campaign);
     let entries = app.tray.entries().iter().enumerate();
     let mut jobs: Vec<Job> = entries
         .filter(|(_, entry)| entry.standing.is_none())
@@ -37,12 +39,15 @@ pub fn open_first(app: &mut App) -> Vec<Job> {
     }
     match first.or_else(|| app.tray.next(None)) {
         Some(entry) => open(app, entry, Direction::ForwardUnsigned),
-        None => {
-            app.message = ("none of the files can be used".to_owned(), Tone::Bad);
-            app.focus = Pane::Tray;
-            Vec::new()
-        }
+        None => none_is_left(app),
     }
+}
+
+fn none_is_left(app: &mut App) -> Vec<Job> {
+    let why = hint_key(Action::Problems);
+    app.message = (format!("none of the files can be used; {why} says why"), Tone::Bad);
+    app.focus = Pane::Tray;
+    Vec::new()
 }
 
 /// Next, previous, next not signed off, or the one under the Tray's cursor.
@@ -100,7 +105,15 @@ pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: St
         Direction::ForwardUnsigned => app.tray.next_unsigned(Some(entry)),
     };
     let next = next.or_else(|| app.tray.previous(entry));
-    let jobs = next.map_or_else(Vec::new, |next| open(app, next, direction));
+    let Some(next) = next else {
+        if app.tray.len() > 1 {
+            none_is_left(app);
+        } else {
+            app.message = (why, Tone::Bad);
+        }
+        return Vec::new();
+    };
+    let jobs = open(app, next, direction);
     app.message = (format!("{name}: {why}"), Tone::Bad);
     jobs
 }

@@ -15,8 +15,8 @@ pub use field::{FieldParts, footprint_under};
 pub use help::{help_groups, problem_rows};
 pub use overlay::draw_overlay;
 pub use status::{hints, side_preview, status_facts};
-pub use trace::TraceParts;
-pub use tray::tray_rows;
+pub use trace::{TraceParts, wavenumber_under};
+pub use tray::{draw_tray, tray_row_under};
 
 /// A value in five digits: `287.43`, `-0.12500`, `1.2346e-7`.
 fn number(value: f64) -> String {

@@ -6,7 +6,7 @@ use crate::ui::app::{App, Table};
 use crate::ui::bench::Bench;
 use crate::ui::channels::Channels;
 use crate::ui::panes::Pane;
-use crate::ui::panes::trace::{BandName, ChannelMark, Curve, Segment, TraceView};
+use crate::ui::panes::trace::{self, BandName, ChannelMark, Curve, Segment, TraceView};
 use crate::units::RadianceUnit;
 
 /// The parts of the view that are made for one drawing.
@@ -83,6 +83,13 @@ impl TraceParts {
             focused: app.focus == Pane::Trace,
         })
     }
+}
+
+/// The wavenumber (cm-1) under a cell of the screen.
+pub fn wavenumber_under(app: &App, column: u16, row: u16) -> Option<f64> {
+    let area = app.layout?.trace?;
+    let parts = TraceParts::of(app);
+    parts.with_view(app, |view| trace::wavenumber_at(view, area, column, row))
 }
 
 /// The quantity on show, each band in ascending order of wavenumber.
