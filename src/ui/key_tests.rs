@@ -71,7 +71,7 @@ fn a_reason_is_asked_for_and_kept() {
     trial.types(":flag so2 plume").keys("Enter");
     let whys: Vec<_> = trial.record().decisions().iter().map(|one| one.why.clone()).collect();
     assert_eq!(whys, [Some("cold top".to_owned()), Some("plume".to_owned())]);
-    assert!(trial.screen(120, 40).contains("cold top"), "the Evidence says why");
+    assert!(trial.screen(200, 60).contains("(cold top)"), "the Evidence says why");
 }
 
 #[test]
