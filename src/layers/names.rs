@@ -28,6 +28,16 @@ pub enum NameError {
         /// The wavenumber of the nearest valid channel, cm-1.
         nearest: Option<f64>,
     },
+    /// No valid channel lies in an interval.
+    #[error("no channel between {low} and {high} cm-1; {}", nearest_words(*nearest))]
+    NoChannelBetween {
+        /// Where the interval begins, cm-1.
+        low: f64,
+        /// Where it ends, cm-1.
+        high: f64,
+        /// The wavenumber of the valid channel nearest to its middle, cm-1.
+        nearest: Option<f64>,
+    },
     /// The name means something, but not in this file.
     #[error("the file gives no {0}")]
     NotInFile(String),

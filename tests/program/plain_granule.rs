@@ -65,6 +65,25 @@ impl PlainGranule {
         writer.close().unwrap();
     }
 
+    /// Writes a file of two footprints over two dimensions, without places on the ground.
+    pub fn write_flat(&self, path: &Path) {
+        let mut writer = NetcdfWriter::create(path).unwrap();
+        let wavenumbers = &self.bands[0].1;
+        for (name, length) in [("line", 1), ("place", 2), ("channel", wavenumbers.len())] {
+            writer.dimension(name, length).unwrap();
+        }
+        let axis =
+            VariableDraft::new("channel", ValueKind::F64, &["channel"]).attribute("units", "cm-1");
+        writer.variable(&axis).unwrap();
+        writer.put_all("channel", &Samples::F64(wavenumbers.clone())).unwrap();
+        let band = VariableDraft::new("radiance", ValueKind::F64, &["line", "place", "channel"])
+            .attribute("units", "mW m-2 sr-1 (cm-1)-1");
+        writer.variable(&band).unwrap();
+        let of = |footprint| wavenumbers.iter().map(move |nu| (self.radiance)(*nu, footprint));
+        writer.put_all("radiance", &Samples::F64((0..2).flat_map(of).collect())).unwrap();
+        writer.close().unwrap();
+    }
+
     /// How many footprints there are.
     pub fn footprints(&self) -> usize {
         self.lengths.iter().product()

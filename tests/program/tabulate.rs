@@ -262,6 +262,22 @@ fn several_files_have_a_column_for_their_name_and_a_bad_one_is_passed_over() {
 }
 
 #[test]
+fn files_of_other_dimensions_share_json_lines_but_no_csv() {
+    let folder = Folder::new();
+    let flat = folder.0.path().join("flat.nc");
+    PlainGranule::new().write_flat(&flat);
+    let files: [&Path; 2] = [&folder.plain(), &flat];
+    let (stdout, stderr) = output(&mut tabulate(&files, &["bt(900)"]), 3);
+    assert_eq!(csv(&stdout).1.len(), 180);
+    assert!(stderr.contains("flat.nc") && stderr.contains("dimensions (line, place)"), "{stderr}");
+    let (lines, _) = output(tabulate(&files, &["bt(900)"]).arg("--json"), 0);
+    assert_eq!(lines.lines().count(), 182);
+    let last: Value = serde_json::from_str(lines.lines().last().unwrap()).unwrap();
+    assert_eq!((&last["line"], &last["place"]), (&Value::from(0), &Value::from(1)));
+    assert!(last["bt(900)"].as_f64().is_some_and(|value| (value - temperature(1)).abs() < 1e-6));
+}
+
+#[test]
 fn a_file_is_written_whole_or_not_at_all() {
     let folder = Folder::new();
     let file = folder.plain();

@@ -273,7 +273,9 @@ fn a_place_without_a_channel_names_the_nearest() {
     let names = FakeNames::black_bodies(&[1]);
     let error_text = |text| error(text, &names).to_string();
     assert!(error_text("bt(500)").contains("the nearest is at 600 cm-1"));
-    assert!(error_text("1 + bt(700.2..700.4)").contains("the nearest is at 700 cm-1"));
+    let between = "no channel between 700.2 and 700.4 cm-1; the nearest is at 700 cm-1";
+    assert!(error_text("1 + bt(700.2..700.4)").contains(between));
+    assert!(error_text("bt(300..400)").contains("the nearest is at 600 cm-1"));
     assert_eq!(&"1 + bt(500)"[error("1 + bt(500)", &names).mistake().span.clone()], "bt(500)");
 }
 

@@ -279,11 +279,12 @@ impl<'n> Planner<'n> {
 
     /// An interval without channels; the nearest one is found by asking for its middle.
     fn no_channel_between(&self, low: f64, high: f64) -> NameError {
-        let wanted = 0.5 * (low + high);
-        match self.names.channel_near(wanted) {
-            Ok(channel) => NameError::NoChannel { wanted, nearest: Some(channel.wavenumber) },
-            Err(error) => error,
-        }
+        let nearest = match self.names.channel_near(0.5 * (low + high)) {
+            Ok(channel) => Some(channel.wavenumber),
+            Err(NameError::NoChannel { nearest, .. }) => nearest,
+            Err(_) => None,
+        };
+        NameError::NoChannelBetween { low, high, nearest }
     }
 
     /// The column in which a program comes out.
