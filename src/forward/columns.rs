@@ -19,7 +19,7 @@ const FINE_STEP: f64 = 0.0125;
 /// Spacing where channels look into the stratosphere, whose lines are narrower.
 const FINEST_STEP: f64 = 0.0025;
 /// Where that is, cm-1: the strong part of the 15 um band.
-const FINEST: (f64, f64) = (648.0, 700.0);
+const FINEST: (f64, f64) = (648.0, 744.0);
 /// Channels are worked on in pieces of about this width, cm-1, so that memory stays bounded.
 const PIECE: f64 = 40.0;
 /// Diffusivity: the downward flux behaves like a beam at 53 degrees.

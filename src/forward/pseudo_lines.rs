@@ -48,7 +48,7 @@ pub(super) fn ozone() -> Vec<Line> {
         centre: 1103.14,
         range: (1060.0, 1160.0),
         strength: 6e-19,
-        lobes: (13.0, 12.0),
+        lobes: (12.0, 8.5),
         gap: 0.08,
     }));
     lines

@@ -102,3 +102,115 @@ fn scenes<'a>(night: &'a Scenery, desert: &'a Scenery) -> Vec<Scene<'a>> {
          [248., 229., 240., 264., 305.2, 309.2, 309.2, 298., 297.7, 298.4, 301.9, 263., 251., 315., 283., 313.9]),
     ]
 }
+
+#[test]
+fn a_clear_dry_window_shows_the_surface() {
+    // Subarctic winter holds 0.4 g cm-2 of water: a black surface is seen to within 1 K in the clean
+    // windows (common practice: the correction at 1231 cm-1 is 2 to 4 K in moist air, a few tenths
+    // in dry air).
+    let windows = [900.3, 961.1, 1127.7, 1231.3, 2616.4];
+    let scenery = scenery(Standard::SubarcticWinter, &Changes::default(), &windows, None);
+    let mut footprint = clear(257.2, Surface::Snow);
+    footprint.reflectivity_factor = 0.0;
+    for (radiance, nu) in scenery.radiances(&footprint).iter().zip(windows) {
+        let difference = bt(nu, *radiance) - 257.2;
+        assert!(difference.abs() < 1.0, "{nu}: {difference}");
+    }
+}
+
+#[test]
+fn strong_bands_hide_the_surface_and_windows_beside_them_show_it() {
+    // The two strong CO2 bands near 15 and 4.3 um with transparent windows beside them (common
+    // practice).
+    let wavenumbers = [640.0, 667.5, 690.0, 2300.0, 2340.0, 2375.0, 900.3, 2500.0, 2616.4];
+    let scenery = scenery(Standard::UsStandard, &Changes::default(), &wavenumbers, None);
+    let at = |temperature: f64| scenery.radiances(&clear(temperature, Surface::Snow));
+    let (cold, warm) = (at(280.0), at(300.0));
+    for (index, nu) in wavenumbers.into_iter().enumerate() {
+        let gain = bt(nu, warm[index]) - bt(nu, cold[index]);
+        if index < 6 {
+            assert!(gain < 0.5, "{nu}: {gain}");
+        } else {
+            assert!(gain > 15.0, "{nu}: {gain}");
+        }
+    }
+}
+
+#[test]
+fn lines_stand_out_at_their_places_in_a_clear_spectrum() {
+    // Absorption where the gases have it, against the channel beside it: the Q branches of CO2 at
+    // 720.8 and 741.7 (the first degraded to lower wavenumbers) and its 791.4 dip, ozone at 1055, methane near 1306, N2O at 2223 (HITRAN).
+    let pairs = [
+        (720.0, 723.0, 5.0),
+        (741.4, 746.0, 2.0),
+        (791.4, 788.5, 1.0),
+        (1055.0, 990.0, 20.0),
+        (1306.0, 1231.3, 20.0),
+        (2210.0, 2160.0, 5.0),
+    ];
+    let wavenumbers: Vec<f64> = pairs.iter().flat_map(|pair| [pair.0, pair.1]).collect();
+    let scenery = scenery(Standard::UsStandard, &Changes::default(), &wavenumbers, None);
+    let radiances = scenery.radiances(&clear(288.2, Surface::Sea));
+    for (index, (line, beside, depth)) in pairs.into_iter().enumerate() {
+        let difference = bt(beside, radiances[2 * index + 1]) - bt(line, radiances[2 * index]);
+        assert!(difference > depth, "{line}: {difference}");
+    }
+}
+
+#[test]
+fn sunlight_is_seen_above_two_thousand_wavenumbers_by_day_only() {
+    let wavenumbers = [900.3, 2616.4];
+    let day = scenery(Standard::UsStandard, &Changes::default(), &wavenumbers, Some(40.0));
+    let lit = |sun_zenith: f64| {
+        let footprint = Footprint { sun_zenith, ..clear(290.0, Surface::Sea) };
+        day.radiances(&footprint)
+    };
+    let (noon, night) = (lit(40.0), lit(120.0));
+    assert_eq!(noon[0], night[0]);
+    let gain = bt(2616.4, noon[1]) - bt(2616.4, night[1]);
+    // Typical daylight increments are 1 to 5 K away from glint.
+    assert!((1.0..5.0).contains(&gain), "{gain}");
+}
+
+#[test]
+fn droplets_look_colder_at_four_micrometres_by_night_and_warmer_by_day() {
+    // Fog by night: BT11 - BT3.9 above 1 K (Eyre et al. 1984); by day reflected sunlight adds
+    // 10 K and more (Ackerman et al. 1998).
+    let wavenumbers = [909.0, 2560.0];
+    let scenery = scenery(Standard::UsStandard, &Changes::default(), &wavenumbers, Some(30.0));
+    let difference = |sun_zenith: f64| {
+        let cover = Cover {
+            particles: Particles::Droplets,
+            height: 1.0,
+            amount: 1.0,
+            optical_depth: 12.0,
+            scattering: 1.0,
+        };
+        let ground = clear(288.0, Surface::Sea);
+        let radiances = scenery.radiances(&Footprint { sun_zenith, covers: vec![cover], ..ground });
+        bt(909.0, radiances[0]) - bt(2560.0, radiances[1])
+    };
+    assert!(difference(120.0) > 1.0, "{}", difference(120.0));
+    assert!(difference(30.0) < -10.0, "{}", difference(30.0));
+}
+
+#[test]
+fn dust_and_ice_bend_the_window_in_opposite_ways() {
+    let wavenumbers = [900.3, 961.1, 1231.3];
+    let scenery = scenery(Standard::Tropical, &Changes::default(), &wavenumbers, None);
+    let slope = |footprint: &Footprint| {
+        let bts: Vec<f64> = scenery
+            .radiances(footprint)
+            .iter()
+            .zip(wavenumbers)
+            .map(|(r, nu)| bt(nu, *r))
+            .collect();
+        (bts[0] - bts[1], bts[1] - bts[2])
+    };
+    let (dust, ice) =
+        (slope(&under(Particles::Dust, 3.0, 1.0)), slope(&under(Particles::Ice, 13.0, 0.3)));
+    // Dust over sea: BT(961) - BT(1231) below -1 K with BT(900) - BT(961) near or above 0 K; ice: the
+    // latter at or below -1.5 K (DeSouza-Machado et al. 2006 and the table above).
+    assert!(dust.1 < -1.0 && dust.0 > -0.3, "{dust:?}");
+    assert!(ice.1 < -0.6 && ice.0 < -1.5, "{ice:?}");
+}

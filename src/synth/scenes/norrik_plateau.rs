@@ -77,11 +77,11 @@ impl Scene for NorrikPlateau {
         let mut footprint = clear(spot, strength, surface, vec![(Surface::Snow, 1.0)]);
         footprint.reflectivity_factor = 1.0 + 0.25 * self.snow.at(spot.y, spot.x);
         let deck = over_footprint(spot.x, spot.y, spot.radius, |x, y| {
-            ramp(self.stratus.at(x, y), 0.15, 0.5)
+            ramp(self.stratus.at(x, y), 0.4, 0.75)
         });
         let top = 1.0 + 0.35 * self.tops.at(spot.x, spot.y).clamp(-1.5, 1.5);
         cover(&mut footprint, Particles::SmallDroplets, top, deck, 6.0);
-        let veil = self.ice.at(spot.x, spot.y) - 0.7;
+        let veil = self.ice.at(spot.x, spot.y) - 0.85;
         cover(
             &mut footprint,
             Particles::SmallIce,

@@ -15,7 +15,7 @@ pub(super) const SETTING: Setting = Setting {
 };
 
 /// Middle of the convective core, km.
-const CORE: (f64, f64) = (-150.0, 90.0);
+const CORE: (f64, f64) = (-95.0, 105.0);
 
 pub(super) struct SeaOfLowen {
     moisture: Field,
@@ -42,9 +42,9 @@ impl SeaOfLowen {
     fn storm_depth(&self, x: f64, y: f64) -> f64 {
         // The anvil is blown out to the west.
         let (east, north) = (x - CORE.0, y - CORE.1);
-        let reach = if east < 0.0 { 1.9 } else { 1.0 };
-        let distance = (east / reach).hypot(north) + 26.0 * self.anvil.at(x, y);
-        30.0 * (-(distance.max(0.0) / 62.0).powi(2)).exp() + 1.6 * ramp(-distance, -260.0, -90.0)
+        let reach = if east < 0.0 { 2.1 } else { 1.0 };
+        let distance = (east / reach).hypot(north) + 24.0 * self.anvil.at(x, y);
+        30.0 * (-(distance.max(0.0) / 40.0).powi(2)).exp() + 2.2 * ramp(-distance, -150.0, -50.0)
     }
 
     /// Height of the storm's top, km: highest over the core.
@@ -67,11 +67,11 @@ impl Scene for SeaOfLowen {
         let mut footprint = clear(spot, air, surface, vec![(Surface::Sea, 1.0)]);
         let cluster = self.clusters.at(spot.x, spot.y);
         let amount = over_footprint(spot.x, spot.y, spot.radius, |x, y| {
-            ramp(self.cumulus.at(x, y) + 0.75 * cluster, 0.75, 1.15)
+            ramp(self.cumulus.at(x, y) + 0.9 * cluster, 0.55, 1.0)
         });
-        let top = 1.3 + 0.5 * ramp(cluster, -1.0, 2.0) + 0.9 * ramp(amount, 0.2, 1.0);
+        let top = 1.4 + 1.4 * ramp(cluster, -0.5, 1.6) + 0.8 * ramp(amount, 0.2, 1.0);
         cover(&mut footprint, Particles::Droplets, top, amount, 9.0);
-        let streak = self.cirrus.at(spot.x, spot.y) - 0.4 + spot.x / 600.0;
+        let streak = self.cirrus.at(spot.x, spot.y) - 0.5 - spot.y / 320.0;
         let thin = 0.55 * ramp(streak, 0.0, 2.0);
         cover(&mut footprint, Particles::Ice, 12.2, ramp(streak, 0.0, 0.5), thin);
         let storm = over_footprint(spot.x, spot.y, spot.radius, |x, y| self.storm_depth(x, y));

@@ -20,6 +20,7 @@ pub(super) struct StraitOfPell {
     deck: Field,
     cells: Field,
     front: Field,
+    cirrus: Field,
 }
 
 impl StraitOfPell {
@@ -31,6 +32,7 @@ impl StraitOfPell {
             deck: Field::new(seed, 34, 240.0, 2),
             cells: Field::new(seed, 35, 24.0, 3),
             front: Field::new(seed, 36, 150.0, 3),
+            cirrus: Field::new(seed, 37, 90.0, 3).stretched(2.0),
         }
     }
 
@@ -63,17 +65,17 @@ impl Scene for StraitOfPell {
             (Surface::Soil, land * (1.0 - green)),
         ];
         // The front lies in the south-east: moister air, layered cloud, cirrus ahead of it.
-        let ahead = spot.x - 1.3 * spot.y - 210.0 + 50.0 * self.front.at(spot.x, spot.y);
-        let air = ramp(ahead, -420.0, 60.0);
+        let ahead = 0.75 * spot.x - spot.y - 265.0 + 50.0 * self.front.at(spot.x, spot.y);
+        let air = ramp(ahead, -380.0, 40.0);
         let mut footprint = clear(spot, air, surface, ground);
-        let deck = self.deck.at(spot.x, spot.y) - 1.3 * land - 0.1;
+        let deck = self.deck.at(spot.x, spot.y) - 1.3 * land + 0.35;
         let amount = over_footprint(spot.x, spot.y, spot.radius, |x, y| {
             ramp(0.8 * self.cells.at(x, y) + 1.4 * deck, 0.2, 0.9)
         });
-        cover(&mut footprint, Particles::Droplets, 0.9 + 0.1 * deck, amount, 10.0);
+        cover(&mut footprint, Particles::Droplets, 0.95 + 0.15 * deck, amount, 10.0);
         let layered = ramp(ahead, -40.0, 90.0);
         cover(&mut footprint, Particles::Droplets, 4.6 + 1.2 * layered, layered, 14.0 * layered);
-        let high = ramp(ahead, -250.0, 40.0);
+        let high = ramp(ahead + 55.0 * self.cirrus.at(spot.x, spot.y), -190.0, 60.0);
         cover(&mut footprint, Particles::Ice, 10.2, ramp(high, 0.0, 0.3), 1.5 * high * high);
         Sighted { footprint, land }
     }
