@@ -4,6 +4,7 @@ use std::io::{self, PipeReader, PipeWriter, Write};
 use std::os::unix::process::{CommandExt, ExitStatusExt};
 use std::path::Path;
 use std::process::{Child, Command, Stdio};
+use std::thread::JoinHandle;
 use std::time::Duration;
 
 use super::messages::{self, Reply, Request};
@@ -15,9 +16,11 @@ use crate::system::{Deadline, clean_text};
 /// A running reader and the pipes to it. Dropping it ends the reader.
 #[derive(Debug)]
 pub struct Link {
-    requests: PipeWriter,
-    replies: PipeReader,
+    /// Questions go in, answers come out; gone when the link ends.
+    pipes: Option<(PipeWriter, PipeReader)>,
     child: Option<Child>,
+    /// In place of a process, in unit tests.
+    thread: Option<JoinHandle<()>>,
 }
 
 impl Link {
@@ -36,15 +39,18 @@ impl Link {
         let (replies, answers) = io::pipe()?;
         // A larger pipe saves switches between the two processes; the default works as well.
         let _ = rustix::pipe::fcntl_setpipe_size(&replies, 1 << 20);
-        let child = match &program.0 {
-            Some(program) => Some(start_process(program, path, limits, questions, answers)?),
+        let mut link = Self { pipes: Some((requests, replies)), child: None, thread: None };
+        match &program.0 {
+            Some(program) => {
+                link.child = Some(start_process(program, path, limits, questions, answers)?);
+            }
             None => {
                 let path = path.to_owned();
-                std::thread::spawn(move || super::serve(&path, questions, answers, || {}));
-                None
+                let serve = move || super::serve(&path, questions, answers, || {});
+                link.thread = Some(std::thread::spawn(serve));
             }
-        };
-        Ok(Self { requests, replies, child })
+        }
+        Ok(link)
     }
 
     /// Asks one question. The error tells whether the reader is still good for the next one.
@@ -90,9 +96,10 @@ impl Link {
         take: impl FnOnce(Reply, &mut TimedPipe<'_>) -> io::Result<Answer>,
     ) -> io::Result<Result<Answer, Reply>> {
         // A question is far smaller than a pipe, so writing it never waits.
-        messages::send(&mut self.requests, request)?;
-        self.requests.flush()?;
-        let mut input = TimedPipe { pipe: &mut self.replies, deadline };
+        let (requests, replies) = self.pipes.as_mut().ok_or(io::ErrorKind::BrokenPipe)?;
+        messages::send(requests, request)?;
+        requests.flush()?;
+        let mut input = TimedPipe { pipe: replies, deadline };
         match messages::receive::<Reply>(&mut input)? {
             refusal @ (Reply::Failed { .. } | Reply::MissingFilter { .. }) => Ok(Err(refusal)),
             reply => take(reply, &mut input).map(Ok),
@@ -123,6 +130,12 @@ impl Link {
 impl Drop for Link {
     fn drop(&mut self) {
         self.end(true);
+        self.pipes = None;
+        if let Some(thread) = self.thread.take() {
+            // It ends with the pipes. HDF5 knows open files by their inode, so one that is closed too
+            // late can get in the way of a new file that has been given the same inode.
+            let _ = thread.join();
+        }
     }
 }
 

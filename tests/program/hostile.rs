@@ -266,11 +266,8 @@ fn a_link_into_another_file_is_not_followed() {
     writer.close().unwrap();
     let file = hdf5_metno::File::open_rw(&path).unwrap();
     file.link_external(other.to_str().unwrap(), "/secret", "linked").unwrap();
+    assert!(file.dataset("linked").is_ok(), "without a sandbox the link leads into the other file");
     drop(file);
-    assert!(
-        netcdf::open(&path).unwrap().variable("linked").is_some(),
-        "the library by itself follows the link, or this test shows nothing"
-    );
     if kernel_has_landlock() {
         assert!(refused(&path).contains("HDF error"));
     } else {
