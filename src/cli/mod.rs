@@ -66,6 +66,7 @@ enum Command {
 
 /// Parses the command line, runs the command, reports a failure on standard error.
 pub fn main() -> ExitCode {
+    surroundings::write_without_file_locks();
     let arguments = match Arguments::try_parse() {
         Ok(arguments) => arguments,
         Err(error) => {

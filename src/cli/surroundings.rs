@@ -43,3 +43,16 @@ pub fn now() -> Result<Timestamp, UsageError> {
         }),
     }
 }
+
+/// Makes HDF5 write without locks. A file is written under a name of its own before it is moved into
+/// place, so nobody else writes it; many shared file systems have no locks and would refuse; and a
+/// reader that is started meanwhile would inherit the lock.
+#[allow(unsafe_code)] // Setting a variable is unsafe beside other threads; see below.
+pub fn write_without_file_locks() {
+    const LOCKING: &str = "HDF5_USE_FILE_LOCKING";
+    if env::var_os(LOCKING).is_none() {
+        // SAFETY: called first of all in `main`, when no other thread runs that could read the
+        // environment. The library has no other switch that netCDF hands through.
+        unsafe { env::set_var(LOCKING, "FALSE") };
+    }
+}
