@@ -1,5 +1,6 @@
 //! Damaged and odd files from outside: a clean message, in time, and nothing left behind.
 
+mod hanging_granule;
 mod missing_filter;
 
 use std::path::{Path, PathBuf};
@@ -9,7 +10,7 @@ use std::time::{Duration, Instant};
 use rand::{RngExt, SeedableRng};
 use rand_chacha::ChaCha8Rng;
 
-use radsieve::netcdf_files::{NetcdfWriter, ValueKind, VariableDraft};
+use hanging_granule::{granule_that_hangs, small_granule};
 
 /// Long enough for anything that goes well to happen, however busy the machine is.
 const PATIENCE: Duration = Duration::from_secs(60);
@@ -57,45 +58,6 @@ fn wait_for_readers(folder: &Path, count: usize) {
         assert!(begun.elapsed() < PATIENCE, "{} readers instead of {count}", readers_of(folder));
         std::thread::sleep(Duration::from_millis(2));
     }
-}
-
-/// A small granule whose attributes are strings, which HDF5 keeps in a heap of their own.
-fn small_granule(folder: &Path) -> PathBuf {
-    let path = folder.join("synthetic.nc");
-    let mut writer = NetcdfWriter::create(&path).unwrap();
-    let text = |text: &str| vec![text.to_owned()];
-    writer.global_attribute("title", text("synthetic: Norrik Plateau")).unwrap();
-    writer.dimension("line", 6).unwrap();
-    writer.dimension("position", 4).unwrap();
-    writer.dimension("nu", 8).unwrap();
-    let axis = VariableDraft::new("nu", ValueKind::F64, &["nu"]).attribute("units", text("cm-1"));
-    writer.variable(&axis).unwrap();
-    let wavenumbers: Vec<f64> = (0..8).map(|n| 900.0 + f64::from(n)).collect();
-    writer.put_all("nu", &wavenumbers.into()).unwrap();
-    let radiance = VariableDraft::new("radiance", ValueKind::F32, &["line", "position", "nu"])
-        .attribute("units", text("mW m-2 sr-1 (cm-1)-1"))
-        .attribute("long_name", text("synthetic radiance"))
-        .chunks(&[2, 4, 8])
-        .deflate(4);
-    writer.variable(&radiance).unwrap();
-    writer.put_all("radiance", &vec![60.0_f32; 192].into()).unwrap();
-    let lat = VariableDraft::new("lat", ValueKind::F32, &["line", "position"])
-        .attribute("units", text("degrees_north"));
-    writer.variable(&lat).unwrap();
-    writer.put_all("lat", &vec![70.0_f32; 24].into()).unwrap();
-    writer.close().unwrap();
-    path
-}
-
-/// A granule in whose heap of strings the library runs in circles: the first object of the heap has
-/// no length, so the next one is itself.
-fn granule_that_hangs(folder: &Path) -> PathBuf {
-    let path = small_granule(folder);
-    let mut bytes = std::fs::read(&path).unwrap();
-    let heap = bytes.windows(4).position(|window| window == b"GCOL").unwrap();
-    bytes[heap + 16..heap + 80].fill(0);
-    std::fs::write(&path, bytes).unwrap();
-    path
 }
 
 /// One way to damage a file.

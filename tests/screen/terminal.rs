@@ -18,14 +18,21 @@ const PATIENCE: Duration = Duration::from_secs(60);
 pub struct Session {
     parser: Arc<Mutex<vt100::Parser>>,
     bytes: Arc<AtomicUsize>,
-    keyboard: Box<dyn Write + Send>,
-    master: Box<dyn MasterPty + Send>,
+    keyboard: Option<Box<dyn Write + Send>>,
+    master: Option<Box<dyn MasterPty + Send>>,
     child: Box<dyn Child + Send + Sync>,
 }
 
 impl Session {
-    /// Starts `radsieve` with `arguments` in `folder`, in a clean environment.
-    pub fn start(folder: &Path, columns: u16, rows: u16, arguments: &[&str]) -> Session {
+    /// Starts `radsieve` with `arguments` in `folder`, in an environment of its own with
+    /// `variables` added.
+    pub fn start_with(
+        folder: &Path,
+        columns: u16,
+        rows: u16,
+        arguments: &[&str],
+        variables: &[(&str, &str)],
+    ) -> Session {
         let size = PtySize { rows, cols: columns, pixel_width: 0, pixel_height: 0 };
         let pair = native_pty_system().openpty(size).unwrap();
         let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_radsieve"));
@@ -36,6 +43,9 @@ impl Session {
         command.env("USER", "tester");
         command.env("HOME", folder);
         command.env("PATH", "/usr/bin:/bin");
+        for (name, value) in variables {
+            command.env(name, value);
+        }
         let child = pair.slave.spawn_command(command).unwrap();
         drop(pair.slave);
         let parser = Arc::new(Mutex::new(vt100::Parser::new(cells(rows), cells(columns), 0)));
@@ -53,14 +63,15 @@ impl Session {
                 screen.lock().unwrap().process(&buffer[..length]);
             }
         });
-        let keyboard = pair.master.take_writer().unwrap();
-        Session { parser, bytes, keyboard, master: pair.master, child }
+        let keyboard = Some(pair.master.take_writer().unwrap());
+        Session { parser, bytes, keyboard, master: Some(pair.master), child }
     }
 
     /// Types `keys` as they come from a keyboard.
     pub fn keys(&mut self, keys: &str) {
-        self.keyboard.write_all(keys.as_bytes()).unwrap();
-        self.keyboard.flush().unwrap();
+        let keyboard = self.keyboard.as_mut().expect("the terminal is still there");
+        keyboard.write_all(keys.as_bytes()).unwrap();
+        keyboard.flush().unwrap();
     }
 
     /// The whole screen as text.
@@ -113,7 +124,13 @@ impl Session {
     pub fn resize(&self, columns: u16, rows: u16) {
         self.parser.lock().unwrap().screen_mut().set_size(cells(rows), cells(columns));
         let size = PtySize { rows, cols: columns, pixel_width: 0, pixel_height: 0 };
-        self.master.resize(size).unwrap();
+        self.master.as_ref().expect("the terminal is still there").resize(size).unwrap();
+    }
+
+    /// Takes the terminal away, as a dropped connection does.
+    pub fn hang_up(&mut self) {
+        self.keyboard = None;
+        self.master = None;
     }
 
     /// The program's process number.
