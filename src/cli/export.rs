@@ -3,7 +3,6 @@
 use std::io::Write;
 use std::path::{Path, PathBuf};
 
-use anyhow::Context;
 use serde_json::json;
 
 use super::inputs::{Inputs, Reading, reader_program};
@@ -73,11 +72,10 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         campaign: campaign.settings().title.clone(),
         ledger_problems: Vec::new(),
     };
-    std::fs::create_dir_all(&arguments.out)
-        .with_context(|| format!("cannot make the folder {}", arguments.out.display()))?;
     let form = arguments.format.into();
     let limits = arguments.reading.limits();
-    let mut exporter = Exporter::new(&campaign, &program, provenance, form, &arguments.out, &files);
+    let mut exporter =
+        Exporter::new(&campaign, &program, provenance, form, &arguments.out, &files)?;
     let mut results = Vec::new();
     for file in &files {
         let granule = Granule::open(&program, file, &limits);

@@ -42,6 +42,14 @@ pub enum NotExported {
     /// A ledger file as a whole cannot be read: flags would be missing without a trace.
     #[error("{0}; the export would miss its decisions: mend it, or move that file out of the way")]
     Ledger(String),
+    /// The folder to write into cannot be made.
+    #[error("cannot make the folder {}: {source}", folder.display())]
+    Folder {
+        /// The folder.
+        folder: PathBuf,
+        /// What the system said.
+        source: std::io::Error,
+    },
     /// There is no name to write under.
     #[error(transparent)]
     Target(#[from] NoTarget),
@@ -77,8 +85,11 @@ pub struct Exporter<'a> {
 }
 
 impl<'a> Exporter<'a> {
-    /// Exports into `folder`, which is there. `inputs` are all granules of the run: none of them is
-    /// ever written to.
+    /// Exports into `folder`, which is made if it is not there. `inputs` are all granules of the run:
+    /// none of them is ever written to.
+    ///
+    /// # Errors
+    /// The folder cannot be made.
     pub fn new(
         campaign: &'a Campaign,
         program: &'a ReaderProgram,
@@ -86,9 +97,11 @@ impl<'a> Exporter<'a> {
         form: Form,
         folder: &Path,
         inputs: &[PathBuf],
-    ) -> Self {
+    ) -> Result<Self, NotExported> {
+        let unmade = |source| NotExported::Folder { folder: folder.to_owned(), source };
+        std::fs::create_dir_all(folder).map_err(unmade)?;
         let targets = Targets::new(folder, form.ending(), inputs);
-        Self { campaign, program, provenance, form, targets }
+        Ok(Self { campaign, program, provenance, form, targets })
     }
 
     /// Replays the ledgers of a granule and writes its mask or list.

@@ -43,7 +43,8 @@ impl Review {
             campaign: campaign.settings().title.clone(),
             ledger_problems: Vec::new(),
         };
-        let mut exporter = Exporter::new(campaign, program, provenance, Form::Mask, folder, inputs);
+        let mut exporter =
+            Exporter::new(campaign, program, provenance, Form::Mask, folder, inputs)?;
         exporter.export(self.granule())
     }
 }

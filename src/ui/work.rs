@@ -139,8 +139,6 @@ fn export(
     inputs: &[PathBuf],
     outside: &Outside,
 ) -> Result<(PathBuf, Vec<String>), String> {
-    std::fs::create_dir_all(folder)
-        .map_err(|error| format!("the folder {} can't be made: {error}", folder.display()))?;
     let by = ExportedBy {
         program: outside.program.clone(),
         person: outside.author.person.clone(),

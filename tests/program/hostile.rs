@@ -3,7 +3,7 @@
 mod hanging_granule;
 mod missing_filter;
 
-use std::path::{Path, PathBuf};
+use std::path::Path;
 use std::process::{Command, Stdio};
 use std::time::{Duration, Instant};
 
@@ -11,6 +11,7 @@ use rand::{RngExt, SeedableRng};
 use rand_chacha::ChaCha8Rng;
 
 use hanging_granule::{granule_that_hangs, small_granule};
+use radsieve::netcdf_files::{NetcdfWriter, ValueKind, VariableDraft};
 
 /// Long enough for anything that goes well to happen, however busy the machine is.
 const PATIENCE: Duration = Duration::from_secs(60);

@@ -10,7 +10,7 @@ fn start(folder: &Path) -> Session {
     let file = sample("ketter_desert");
     let arguments = ["review", file.to_str().unwrap(), "--campaign", "campaign"];
     let session = Session::start_with(folder, 80, 24, &arguments, &[]);
-    session.expect("untouched");
+    session.expect("0 flagged ·");
     session
 }
 
@@ -65,7 +65,7 @@ fn every_size_of_the_terminal_is_survived() {
         session.settle();
     }
     session.expect("Field bt(900)");
-    session.expect("untouched");
+    session.expect("0 flagged ·");
     session.keys("q");
     assert!(session.end().success());
 }
@@ -89,8 +89,62 @@ fn help_and_the_command_line_open_and_close() {
     session.expect_gone("cursor up");
     session.keys(":no-such-command\r");
     session.expect("no-such-command");
+    // A lone Esc is told from the start of a sequence by the pause behind it.
     session.keys("\x1b");
+    session.expect_gone("no-such-command");
     session.keys(":quit\r");
     assert!(session.end().success());
     session.assert_given_back();
+}
+
+/// Processes whose command line names a file below `folder`, the readers apart.
+fn reviews_of(folder: &Path) -> Vec<u32> {
+    let folder = folder.to_string_lossy();
+    let process = |entry: std::fs::DirEntry| {
+        let line = std::fs::read(entry.path().join("cmdline")).ok()?;
+        let line = String::from_utf8_lossy(&line).into_owned();
+        let found = line.contains(&*folder) && line.contains("\0review\0");
+        found.then(|| entry.file_name().to_string_lossy().parse().ok()).flatten()
+    };
+    std::fs::read_dir("/proc").unwrap().filter_map(Result::ok).filter_map(process).collect()
+}
+
+#[test]
+fn the_shell_is_there_while_the_review_is_stopped_and_the_review_comes_back_whole() {
+    let folder = tempfile::tempdir().unwrap();
+    let mut session = Session::shell(folder.path(), 80, 24);
+    session.expect("shell>");
+    let program = env!("CARGO_BIN_EXE_radsieve");
+    let campaign = folder.path().join("campaign");
+    let file = sample("ketter_desert");
+    session.keys(&format!(
+        "{program} review {} --campaign {}\r",
+        file.display(),
+        campaign.display()
+    ));
+    session.expect("0 flagged ·");
+    let stop_by_key = |session: &mut Session| session.keys("\x1a");
+    let stop_by_signal = |_: &mut Session| {
+        let reviews = reviews_of(folder.path());
+        assert_eq!(reviews.len(), 1, "{reviews:?}");
+        send("-TSTP", reviews[0]);
+    };
+    let ways: [&dyn Fn(&mut Session); 2] = [&stop_by_key, &stop_by_signal];
+    for stop in ways {
+        stop(&mut session);
+        session.expect("Stopped");
+        session.assert_given_back_to_shell();
+        session.keys("echo $((40 + 2)) is here\r");
+        session.expect("42 is here");
+        session.keys("fg\r");
+        session.expect("Field bt(900)");
+        session.expect("0 flagged ·");
+    }
+    session.keys("fc");
+    session.expect("kept · 1 flagged");
+    session.keys("q");
+    session.expect_last("shell>");
+    session.keys("exit\r");
+    assert!(session.end().success());
+    assert_eq!(decisions(folder.path()), 1);
 }

@@ -3,7 +3,7 @@
 use std::io::{Read, Write};
 use std::num::NonZero;
 use std::path::Path;
-use std::sync::atomic::{AtomicUsize, Ordering};
+use std::sync::atomic::{AtomicBool, AtomicUsize, Ordering};
 use std::sync::{Arc, Mutex};
 use std::thread;
 use std::time::{Duration, Instant};
@@ -18,6 +18,7 @@ const PATIENCE: Duration = Duration::from_secs(60);
 pub struct Session {
     parser: Arc<Mutex<vt100::Parser>>,
     bytes: Arc<AtomicUsize>,
+    gone: Arc<AtomicBool>,
     keyboard: Option<Box<dyn Write + Send>>,
     master: Option<Box<dyn MasterPty + Send>>,
     child: Box<dyn Child + Send + Sync>,
@@ -33,10 +34,27 @@ impl Session {
         arguments: &[&str],
         variables: &[(&str, &str)],
     ) -> Session {
-        let size = PtySize { rows, cols: columns, pixel_width: 0, pixel_height: 0 };
-        let pair = native_pty_system().openpty(size).unwrap();
         let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_radsieve"));
         command.args(arguments);
+        Session::run(folder, columns, rows, command, variables)
+    }
+
+    /// Starts a shell with job control, as a person has one.
+    pub fn shell(folder: &Path, columns: u16, rows: u16) -> Session {
+        let mut command = CommandBuilder::new("/bin/bash");
+        command.args(["--norc", "--noprofile", "-i"]);
+        Session::run(folder, columns, rows, command, &[("PS1", "shell> ")])
+    }
+
+    fn run(
+        folder: &Path,
+        columns: u16,
+        rows: u16,
+        mut command: CommandBuilder,
+        variables: &[(&str, &str)],
+    ) -> Session {
+        let size = PtySize { rows, cols: columns, pixel_width: 0, pixel_height: 0 };
+        let pair = native_pty_system().openpty(size).unwrap();
         command.cwd(folder);
         command.env_clear();
         command.env("TERM", "xterm-256color");
@@ -51,12 +69,13 @@ impl Session {
         let parser = Arc::new(Mutex::new(vt100::Parser::new(cells(rows), cells(columns), 0)));
         let bytes = Arc::new(AtomicUsize::new(0));
         let mut output = pair.master.try_clone_reader().unwrap();
-        let (screen, count) = (Arc::clone(&parser), Arc::clone(&bytes));
+        let gone = Arc::new(AtomicBool::new(false));
+        let (screen, count, left) = (Arc::clone(&parser), Arc::clone(&bytes), Arc::clone(&gone));
         thread::spawn(move || {
             let mut buffer = [0; 8192];
             // A closed pseudo-terminal reads as an error on Linux: the program has ended.
             while let Ok(length) = output.read(&mut buffer) {
-                if length == 0 {
+                if length == 0 || left.load(Ordering::SeqCst) {
                     break;
                 }
                 count.fetch_add(length, Ordering::SeqCst);
@@ -64,7 +83,7 @@ impl Session {
             }
         });
         let keyboard = Some(pair.master.take_writer().unwrap());
-        Session { parser, bytes, keyboard, master: Some(pair.master), child }
+        Session { parser, bytes, gone, keyboard, master: Some(pair.master), child }
     }
 
     /// Types `keys` as they come from a keyboard.
@@ -82,6 +101,11 @@ impl Session {
     /// Waits until the screen shows `text`; fails with the last screen when it never does.
     pub fn expect(&self, text: &str) {
         self.wait(&format!("`{text}` on the screen"), |screen| screen.contains(text));
+    }
+
+    /// Waits until `text` is the last thing on the screen.
+    pub fn expect_last(&self, text: &str) {
+        self.wait(&format!("`{text}` at the end"), |screen| screen.trim_end().ends_with(text));
     }
 
     /// Waits until the screen no longer shows `text`.
@@ -129,6 +153,9 @@ impl Session {
 
     /// Takes the terminal away, as a dropped connection does.
     pub fn hang_up(&mut self) {
+        self.gone.store(true, Ordering::SeqCst);
+        // Closing the keyboard sends an end of transmission, to which the program draws an answer;
+        // that wakes the thread that reads the screen, which closes the last handle.
         self.keyboard = None;
         self.master = None;
     }
@@ -158,11 +185,17 @@ impl Session {
 
     /// Asserts that the terminal is as it was before the program started.
     pub fn assert_given_back(&self) {
+        self.assert_given_back_to_shell();
+        let parser = self.parser.lock().unwrap();
+        assert!(!parser.screen().bracketed_paste(), "bracketed paste is still on");
+    }
+
+    /// The same where a shell has the terminal now, which may switch bracketed paste on itself.
+    pub fn assert_given_back_to_shell(&self) {
         let parser = self.parser.lock().unwrap();
         let screen = parser.screen();
         assert!(!screen.alternate_screen(), "still on the alternate screen");
         assert!(!screen.hide_cursor(), "the cursor is hidden");
-        assert!(!screen.bracketed_paste(), "bracketed paste is still on");
         assert_eq!(screen.mouse_protocol_mode(), vt100::MouseProtocolMode::None, "mouse is on");
     }
 }
