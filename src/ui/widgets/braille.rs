@@ -72,7 +72,8 @@ impl Braille {
                     char::from_u32(0x2800 | there | u32::from(*bits)).unwrap_or(sign)
                 }
             };
-            cell.set_char(sign).set_style(style);
+            // The colour of what is drawn last holds, also where that is the text's own.
+            cell.set_char(sign).set_style(Style::reset()).set_style(style);
         }
     }
 }
@@ -81,6 +82,7 @@ impl Braille {
 mod tests {
     use super::*;
     use crate::ui::widgets::Screen;
+    use ratatui::style::Color;
 
     #[test]
     fn dots_share_cells() {
@@ -96,6 +98,11 @@ mod tests {
         second.column(99, 0, 99);
         second.draw('*', Style::new(), &mut screen.buffer);
         assert_eq!(screen.lines(), ["⡏⢀"]);
+        let mut third = Braille::new(screen.area(), false);
+        third.column(0, 3, 3);
+        third.draw('*', Style::new().fg(Color::Red), &mut screen.buffer);
+        second.draw('*', Style::new(), &mut screen.buffer);
+        assert_eq!(screen.buffer[(0, 0)].fg, Color::Reset, "the last one's colour holds");
     }
 
     #[test]

@@ -13,6 +13,7 @@ use crate::ui::widgets::put;
 /// reaches; otherwise a name stands between the curves where it finds room within its band. A name
 /// that finds none is left out.
 pub(super) fn draw(plot: &Plot, bands: &[BandName<'_>], theme: &Theme, buffer: &mut Buffer) {
+    let mut placed = Vec::new();
     for band in bands {
         let (low, high) = (band.low.max(plot.x.0), band.high.min(plot.x.1));
         let (Some(from), Some(to)) = (plot.column_of(low), plot.column_of(high)) else { continue };
@@ -20,31 +21,35 @@ pub(super) fn draw(plot: &Plot, bands: &[BandName<'_>], theme: &Theme, buffer: &
             continue;
         }
         let extent = Rect { x: from, width: to - from + 1, ..plot.bands };
-        if plot.bands_alone {
-            draw_alone(band.label, extent, plot, theme, buffer);
-        } else {
+        if !plot.bands_alone {
             draw_between(band.label, extent, plot, theme, buffer);
+        } else if let Some(name) = draw_alone(band.label, extent, plot, theme, buffer) {
+            placed.push((name, extent));
         }
+    }
+    for (name, extent) in placed {
+        draw_extent(name, extent, theme, buffer);
     }
 }
 
 /// A name in the line for names, over the middle of its extent, wider than it if need be.
-fn draw_alone(label: &str, extent: Rect, plot: &Plot, theme: &Theme, buffer: &mut Buffer) {
+fn draw_alone(
+    label: &str,
+    extent: Rect,
+    plot: &Plot,
+    theme: &Theme,
+    buffer: &mut Buffer,
+) -> Option<Rect> {
     let width = label.width() as u16;
-    if width > plot.bands.width {
-        return;
-    }
+    let latest = plot.bands.right().checked_sub(width).filter(|latest| *latest >= plot.bands.x)?;
     let middle = extent.x + extent.width / 2;
-    let latest = plot.bands.right() - width;
     let start = middle.saturating_sub(width / 2).clamp(plot.bands.x, latest);
     let name = Rect { x: start, width, ..plot.bands };
-    let whole = name.union(extent);
-    if is_free(whole, buffer) {
-        draw_extent(extent, theme, buffer);
-    } else if !is_free(name, buffer) {
-        return;
+    if !is_free(name, buffer) {
+        return None;
     }
     put(name, label, theme.style(Tone::Faint), theme.ascii, buffer);
+    Some(name)
 }
 
 /// A name on whichever row has room for it near the middle of its extent, from the top and the
@@ -76,17 +81,27 @@ fn is_free(place: Rect, buffer: &Buffer) -> bool {
     })
 }
 
-fn draw_extent(extent: Rect, theme: &Theme, buffer: &mut Buffer) {
+/// Lines from a name to both ends of its extent, or up to the next name.
+fn draw_extent(name: Rect, extent: Rect, theme: &Theme, buffer: &mut Buffer) {
     let [first, middle, last] = if theme.ascii { ["-", "-", "-"] } else { ["╶", "─", "╴"] };
-    for x in extent.x..extent.right() {
-        let sign = match x {
-            _ if extent.width < 3 => middle,
-            x if x == extent.x => first,
-            x if x == extent.right() - 1 => last,
-            _ => middle,
-        };
-        if let Some(cell) = buffer.cell_mut((x, extent.y)) {
+    let mut draw = |x: u16, end: bool, sign: &str| {
+        let is_blank = |x: u16| buffer.cell((x, name.y)).is_some_and(|cell| cell.symbol() == " ");
+        let beyond = if x < name.x { x.wrapping_sub(1) } else { x + 1 };
+        let goes_on = is_blank(x) && (end || is_blank(beyond));
+        if let Some(cell) = buffer.cell_mut((x, name.y)).filter(|_| goes_on) {
             cell.set_symbol(sign).set_style(theme.style(Tone::Faint));
+        }
+        goes_on
+    };
+    for x in (extent.x..name.x).rev() {
+        if !draw(x, x == extent.x, if x == extent.x { first } else { middle }) {
+            break;
+        }
+    }
+    for x in name.right()..extent.right() {
+        let end = x == extent.right() - 1;
+        if !draw(x, end, if end { last } else { middle }) {
+            break;
         }
     }
 }
