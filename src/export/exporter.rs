@@ -9,7 +9,8 @@ use super::source::MaskSource;
 use super::target::{NoTarget, Targets, mask_owner};
 use super::usable_list::{list_owner, write_usable_list};
 use crate::flags::{
-    Campaign, Counts, FlagState, GranuleState, LedgerReading, Loss, Vocabulary, read_ledgers,
+    Campaign, Counts, FlagState, GranuleState, LedgerProblem, LedgerReading, Loss, Vocabulary,
+    read_ledgers,
 };
 use crate::granule::{Granule, GranuleError};
 use crate::netcdf_files::ReaderProgram;
@@ -140,7 +141,7 @@ impl<'a> Exporter<'a> {
             Form::Mask => {
                 let mut provenance = self.provenance.clone();
                 provenance.ledger_problems =
-                    reading.problems.iter().map(ToString::to_string).collect();
+                    reading.problems.iter().map(LedgerProblem::without_folder).collect();
                 write_mask(source, record, &provenance, &chosen.path)?;
             }
             Form::UsableList => {

@@ -14,9 +14,9 @@ impl MaskSource {
         let Identity { size, hash } = granule.hash()?.clone();
         let grid = granule.footprints();
         let geolocation = granule.geolocation();
-        let mut problems: Vec<String> =
-            granule.problems().iter().map(ToString::to_string).collect();
-        problems.extend(granule.cube().notes().iter().map(ToString::to_string));
+        // Not what the cube noticed: that depends on how much of the file has been looked at, and
+        // the same decisions are to give the same bytes.
+        let problems = granule.problems().iter().map(ToString::to_string).collect();
         Ok(Self {
             name: granule.name(),
             size,

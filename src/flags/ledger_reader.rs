@@ -46,9 +46,21 @@ pub struct LedgerProblem {
 impl fmt::Display for LedgerProblem {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         let path = clean_text(&self.path.display().to_string());
+        f.write_str(&self.told_of(&path))
+    }
+}
+
+impl LedgerProblem {
+    /// In words that do not depend on where the campaign folder lies, for masks.
+    pub fn without_folder(&self) -> String {
+        let name = self.path.file_name().unwrap_or_default().to_string_lossy();
+        format!("ledger {}", self.told_of(&clean_text(&name)))
+    }
+
+    fn told_of(&self, file: &str) -> String {
         match self.line {
-            0 => write!(f, "{path}: {}", self.what),
-            line => write!(f, "{path}, line {line}: {}", self.what),
+            0 => format!("{file}: {}", self.what),
+            line => format!("{file}, line {line}: {}", self.what),
         }
     }
 }

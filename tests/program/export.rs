@@ -312,6 +312,7 @@ fn a_ledger_of_a_newer_version_stops_the_export() {
     let problems = desk.mask("lowen.mask.nc");
     let problems = problems.index().global_attribute("problems").unwrap().text().unwrap();
     assert!(problems.contains("cut off"), "{problems}");
+    assert!(!problems.contains("campaign/"), "the folder's place is nobody's business: {problems}");
 }
 
 #[test]
