@@ -7,6 +7,7 @@
 #![allow(clippy::print_stdout)]
 
 mod inversion;
+mod reading;
 mod stopwatch;
 mod table;
 
@@ -19,9 +20,13 @@ pub enum Size {
     Small,
 }
 
-fn main() {
+fn main() -> Result<(), Box<dyn std::error::Error>> {
     // Cargo says `--bench` when it measures; a test run of all targets does not.
     let measuring = std::env::args().any(|argument| argument == "--bench");
     let size = if measuring { Size::Full } else { Size::Small };
     println!("{}", inversion::section(size));
+    for section in reading::sections(size)? {
+        println!("{section}");
+    }
+    Ok(())
 }

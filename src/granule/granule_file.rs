@@ -193,6 +193,7 @@ impl Granule {
             true => Err(GranuleError::Cancelled),
             false => self.fill_slab_until(band, slab, Some(cancel)),
         };
+        let _at_work = self.reader.at_work();
         let mut tell = |done| progress(Progress { done, total: slabs.len() });
         side_by_side(&slabs, fill, &mut tell)
     }

@@ -24,7 +24,7 @@ mod turns;
 mod writer;
 
 pub use attribute::{Attribute, AttributeValue};
-pub use chunks::Demand;
+pub use chunks::{AtWork, Demand};
 pub use confine::confine;
 pub use index::{Dimension, FileIndex, Group, Storage, Variable};
 pub use read_error::ReadError;

@@ -4,7 +4,7 @@ use std::io;
 use std::path::{Path, PathBuf};
 use std::sync::{Mutex, PoisonError};
 
-use super::chunks::{ChunkTable, Demand, FastPath, KnownFile};
+use super::chunks::{AtWork, ChunkTable, Demand, FastPath, KnownFile};
 use super::door;
 use super::index::{FileIndex, Variable};
 use super::link::Link;
@@ -95,6 +95,12 @@ impl FileReader {
         count: &[usize],
     ) -> Result<Samples, ReadError> {
         self.read_on_demand(variable, start, count, Demand { urgent: true, cancel: None })
+    }
+
+    /// Says that many blocks will be read one after another: what decoding them takes of memory is
+    /// kept until the answer is dropped.
+    pub fn at_work(&self) -> AtWork<'_> {
+        self.fast.at_work()
     }
 
     /// Reads all values of a variable, row-major.

@@ -1,6 +1,6 @@
 //! A block of values out of the chunks that hold it.
 
-use std::sync::{Mutex, PoisonError};
+use std::sync::{Mutex, MutexGuard, PoisonError};
 
 use rayon::prelude::*;
 
@@ -16,7 +16,7 @@ use crate::system::Cancel;
 /// Shorter runs, in values, are not worth being handed to several threads.
 const SHORTEST_SHARED_RUN: usize = 16;
 
-/// Memory for a chunk that is kept for the next block, bytes; more is given back.
+/// Memory for a chunk, in bytes, that is kept when nobody works; more is given back.
 const KEPT_SCRATCH: usize = 8 << 20;
 
 /// Why there are no values.
@@ -35,21 +35,46 @@ pub enum Stopped {
 
 /// Memory that threads undo chunks in, one piece for each that is at work.
 #[derive(Default)]
-pub struct ScratchPool(Mutex<Vec<Scratch>>);
+pub struct ScratchPool(Mutex<Kept>);
+
+#[derive(Default)]
+struct Kept {
+    scratch: Vec<Scratch>,
+    at_work: usize,
+}
+
+/// Keeps the memory that large chunks take until it is dropped: taking it anew for each block costs
+/// more than using it.
+pub struct AtWork<'a>(&'a ScratchPool);
 
 impl ScratchPool {
+    /// Says that more blocks will follow soon.
+    pub fn at_work(&self) -> AtWork<'_> {
+        self.kept().at_work += 1;
+        AtWork(self)
+    }
+
     fn take(&self) -> Scratch {
-        self.0.lock().unwrap_or_else(PoisonError::into_inner).pop().unwrap_or_else(Scratch::new)
+        self.kept().scratch.pop().unwrap_or_else(Scratch::new)
     }
 
     fn give_back(&self, scratch: Scratch) {
-        self.0.lock().unwrap_or_else(PoisonError::into_inner).push(scratch);
+        self.kept().scratch.push(scratch);
     }
 
-    /// Gives back to the system what large chunks have taken.
-    fn shrink(&self) {
-        let mut kept = self.0.lock().unwrap_or_else(PoisonError::into_inner);
-        kept.retain(|scratch| scratch.held() <= KEPT_SCRATCH);
+    fn kept(&self) -> MutexGuard<'_, Kept> {
+        // Pieces are put and taken whole, so a panic elsewhere spoils nothing.
+        self.0.lock().unwrap_or_else(PoisonError::into_inner)
+    }
+}
+
+impl Drop for AtWork<'_> {
+    fn drop(&mut self) {
+        let mut kept = self.0.kept();
+        kept.at_work -= 1;
+        if kept.at_work == 0 {
+            kept.scratch.retain(|scratch| scratch.held() <= KEPT_SCRATCH);
+        }
     }
 }
 
@@ -70,7 +95,8 @@ pub struct Decoder<'a> {
 impl Decoder<'_> {
     /// The values of a block, which lies inside the variable and is not empty, row-major.
     pub fn block(&self, start: &[usize], count: &[usize]) -> Result<Samples, Stopped> {
-        let samples = match self.table.kind {
+        let _at_work = self.scratch.at_work();
+        Ok(match self.table.kind {
             ValueKind::I8 => Samples::I8(self.values(start, count)?),
             ValueKind::U8 => Samples::U8(self.values(start, count)?),
             ValueKind::I16 => Samples::I16(self.values(start, count)?),
@@ -83,9 +109,7 @@ impl Decoder<'_> {
             ValueKind::F64 => Samples::F64(self.values(start, count)?),
             // A checked table is of numbers.
             ValueKind::Text | ValueKind::Character | ValueKind::Other => Samples::U8(Vec::new()),
-        };
-        self.scratch.shrink();
-        Ok(samples)
+        })
     }
 
     fn values<Value: Sample>(

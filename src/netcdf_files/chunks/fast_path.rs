@@ -6,7 +6,7 @@ use std::path::Path;
 use std::sync::{Arc, Mutex, OnceLock, PoisonError};
 
 use super::chunk_file::ChunkFile;
-use super::decode::{Decoder, ScratchPool, Stopped};
+use super::decode::{AtWork, Decoder, ScratchPool, Stopped};
 use super::table::{CheckedTable, ChunkTable};
 use crate::netcdf_files::{FileFormat, FileIndex, ReadError, ReadFault, Samples, Variable};
 use crate::system::{Cancel, FileStamp};
@@ -51,6 +51,11 @@ pub struct KnownFile<'a> {
 }
 
 impl FastPath {
+    /// Keeps memory for chunks at hand until the answer is dropped.
+    pub fn at_work(&self) -> AtWork<'_> {
+        self.scratch.at_work()
+    }
+
     /// Reads a block, which lies inside the variable; nothing where the reader process has to.
     ///
     /// `ask` asks the reader for the variable's chunk table, once; it answers nothing where the

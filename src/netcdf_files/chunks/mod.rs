@@ -15,6 +15,7 @@ mod sample;
 mod survey;
 mod table;
 
+pub use decode::AtWork;
 pub use fast_path::{Demand, FastPath, KnownFile};
 pub use survey::survey;
 pub use table::ChunkTable;
