@@ -10,8 +10,10 @@ mod record;
 mod review;
 mod spectrum;
 mod suggestions;
+mod verbs;
 
 pub use exporting::ExportedBy;
-pub use record::{Record, Refusal};
+pub use record::Record;
 pub use review::Review;
 pub use spectrum::{BandSpectrum, Spectrum};
+pub use verbs::Refusal;

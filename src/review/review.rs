@@ -3,6 +3,7 @@
 use std::path::Path;
 use std::sync::{Arc, OnceLock};
 
+use crate::export::granule_identity;
 use crate::flags::GranuleIdentity;
 use crate::granule::{Cube, Granule, GranuleError};
 use crate::layers::{Expression, GranuleNames, Layer, Mistake, Neighbours, evaluate_all};
@@ -83,14 +84,7 @@ impl Review {
     /// # Errors
     /// The file can't be read, or is no longer the one that was opened.
     pub fn identify(&self) -> Result<GranuleIdentity, GranuleError> {
-        let content = self.granule.hash()?;
-        let grid = self.granule.footprints();
-        Ok(GranuleIdentity {
-            hash: content.hash.clone(),
-            size: content.size,
-            name: self.granule.name(),
-            footprints: grid.names().iter().cloned().zip(grid.lengths().iter().copied()).collect(),
-        })
+        granule_identity(&self.granule)
     }
 }
 

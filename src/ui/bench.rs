@@ -5,15 +5,15 @@ use std::sync::Arc;
 
 use crate::flags::FootprintSet;
 use crate::granule::Channel;
-use crate::review::{Record, Review, Spectrum};
-use crate::system::Cancel;
+use crate::review::{Review, Spectrum};
 
+pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState};
 use super::channels::Channels;
-use super::command::Side;
 use super::overlay::Selection;
 use super::panes::field::Placement;
 use super::place::Place;
 use super::shown_layer::ShownLayer;
+use super::side::Side;
 use super::spectrum_window::SpectrumWindow;
 
 /// The footprints that can be pinned at once; more spectra cannot be told apart.
@@ -71,96 +71,6 @@ pub struct Bench {
     pub export_waits: Option<PathBuf>,
     /// A key has changed what is on show, so that a kept place comes too late.
     pub touched: bool,
-}
-
-/// What was decided about the granule.
-pub enum RecordState {
-    /// Its content and its ledgers are still being read.
-    Reading,
-    /// All is known, and new decisions can be written.
-    Open(Box<Record>),
-    /// It can't be; in words.
-    Failed(String),
-}
-
-impl RecordState {
-    /// The record, if it is open.
-    pub fn open(&self) -> Option<&Record> {
-        match self {
-            RecordState::Open(record) => Some(record),
-            _ => None,
-        }
-    }
-
-    /// The record, if it is open, to decide.
-    pub fn open_mut(&mut self) -> Option<&mut Record> {
-        match self {
-            RecordState::Open(record) => Some(record),
-            _ => None,
-        }
-    }
-}
-
-/// A footprint pinned to compare.
-pub struct Pinned {
-    /// Which.
-    pub footprint: usize,
-    /// Its letter on the map and at the curve.
-    pub letter: char,
-    /// Its spectrum, once it is there.
-    pub spectrum: Option<Spectrum>,
-}
-
-/// An index of the Evidence.
-pub struct Index {
-    /// The expression.
-    pub text: String,
-    /// What it tells, in two words.
-    pub label: String,
-    /// Its unit's label.
-    pub unit: String,
-    /// One value per footprint, or why there are none.
-    pub values: Result<Vec<f64>, String>,
-}
-
-/// A variable of the producer's on quality.
-pub struct Quality {
-    /// Its number among the granule's variables.
-    pub variable: usize,
-    /// One value per footprint, or why there are none.
-    pub values: Result<Vec<f64>, String>,
-}
-
-/// How far the reading of the spectra has come.
-#[derive(Default)]
-pub struct Filling {
-    /// The request of the job that reads.
-    pub request: u64,
-    /// Ends that job.
-    pub cancel: Cancel,
-    /// The share that is there, 0 to 1.
-    pub share: f64,
-    /// All is there.
-    pub done: bool,
-    /// Why some of it can't be read, if so.
-    pub problem: Option<String>,
-}
-
-/// The numbers of requests whose answers are waited for; 0 is none.
-#[derive(Debug, Clone, Copy, Default)]
-pub struct Awaited {
-    /// Reading the ledgers.
-    pub record: u64,
-    /// Evaluating the layer.
-    pub layer: u64,
-    /// Reading the spectrum under the cursor.
-    pub spectrum: u64,
-    /// Evaluating the indices.
-    pub indices: u64,
-    /// Reading what the producer says about quality.
-    pub quality: u64,
-    /// Writing an export.
-    pub export: u64,
 }
 
 impl Bench {

@@ -10,6 +10,7 @@
 mod answers;
 pub mod app;
 pub mod bench;
+mod bench_parts;
 mod channels;
 pub mod colour;
 pub mod command;
@@ -35,12 +36,14 @@ mod prompts;
 mod run;
 mod runner;
 mod shown_layer;
+mod side;
 mod signals;
 mod spectrum_window;
 mod terminal;
 #[cfg(test)]
 mod trial;
 mod turning;
+mod typing;
 mod update;
 mod views;
 pub mod widgets;

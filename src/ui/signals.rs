@@ -52,6 +52,15 @@ fn end_anyway_later(signal: i32) {
     });
 }
 
+/// Whether there is a shell that can continue this job. A process group whose leader's parent lives
+/// in another session (a command given to ssh, a pane that runs nothing else) could never be
+/// continued from its terminal: the kernel does not stop it by a key either.
+pub fn can_be_continued() -> bool {
+    let parent = rustix::process::getppid();
+    let session = |process| rustix::process::getsid(process).ok();
+    parent.is_some_and(|parent| session(Some(parent)) == session(None))
+}
+
 /// Asks the whole job to stop, as the shell's Ctrl-Z does: a script around us has to stop too.
 /// Our own answer to the signal is an `Event::Suspend`.
 pub fn ask_for_stop() {

@@ -12,7 +12,7 @@ use crossterm::terminal::{
 use crossterm::{cursor, execute, queue, terminal};
 use ratatui::backend::CrosstermBackend;
 use ratatui::layout::{Rect, Size};
-use ratatui::{Frame, Terminal};
+use ratatui::{Frame, Terminal, TerminalOptions, Viewport};
 
 type Writer = BufWriter<Stdout>;
 
@@ -35,6 +35,9 @@ pub struct Screen {
     terminal: Terminal<CrosstermBackend<Writer>>,
     synchronised: bool,
 }
+
+/// Drawn on where the terminal does not know its size (batch systems start shells without one).
+const UNKNOWN_SIZE: Size = Size { width: 80, height: 24 };
 
 /// Whether a terminal is there that can show the review.
 pub fn is_usable(term: Option<&str>) -> bool {
@@ -74,7 +77,8 @@ impl Screen {
     /// # Errors
     /// The terminal has gone away.
     pub fn size(&self) -> io::Result<Size> {
-        self.terminal.size()
+        let size = self.terminal.size()?;
+        Ok(if size.width == 0 || size.height == 0 { UNKNOWN_SIZE } else { size })
     }
 
     /// Draws what changed since the last time.
@@ -98,7 +102,7 @@ impl Screen {
     /// The terminal has gone away.
     pub fn forget(&mut self) -> io::Result<()> {
         // Resizing to the present size blanks the screen without asking the terminal anything.
-        let size = self.terminal.size()?;
+        let size = self.size()?;
         self.terminal.resize(Rect::new(0, 0, size.width, size.height))
     }
 
@@ -126,7 +130,15 @@ fn start(mouse: bool) -> io::Result<Terminal<CrosstermBackend<Writer>>> {
         queue!(writer, Print(MOUSE_ON))?;
     }
     writer.flush()?;
-    Terminal::new(CrosstermBackend::new(writer))
+    let backend = CrosstermBackend::new(writer);
+    if terminal::size().is_ok_and(|(width, height)| width == 0 || height == 0) {
+        let area = Rect::new(0, 0, UNKNOWN_SIZE.width, UNKNOWN_SIZE.height);
+        return Terminal::with_options(
+            backend,
+            TerminalOptions { viewport: Viewport::Fixed(area) },
+        );
+    }
+    Terminal::new(backend)
 }
 
 /// Gives the terminal back, from any thread. Errors are of no use here: the terminal may be gone.

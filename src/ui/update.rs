@@ -7,13 +7,13 @@ use super::key::{Code, Key};
 use super::keys::{self, Action};
 use super::overlay::Overlay;
 use super::panes::Pane;
-use super::{answers, deciding, looking, moving, prompts, turning};
+use super::{answers, deciding, looking, moving, prompts, turning, typing};
 
 /// Changes the state by an event and names the jobs to be started.
 pub fn update(app: &mut App, event: Event) -> Vec<Job> {
     match event {
         Event::Input(Input::Key(key)) => press(app, key),
-        Event::Input(Input::Paste(text)) => prompts::paste(app, &text),
+        Event::Input(Input::Paste(text)) => typing::paste(app, &text),
         Event::Input(Input::Mouse(mouse)) => click(app, mouse),
         Event::Answer(answer) => answers::take(app, answer),
         Event::LedgerMoved => turning::ledger_moved(app),
@@ -37,11 +37,13 @@ fn press(app: &mut App, key: Key) -> Vec<Job> {
     if let Some(bench) = app.bench_mut() {
         bench.touched = true;
     }
-    match app.overlay {
-        Overlay::None => {}
-        _ => return prompts::press(app, key),
+    let action = keys::action_of(key);
+    // Stopping and drawing anew work whatever lies over the panes.
+    let always = matches!(action, Some(Action::Suspend | Action::Redraw));
+    if !always && !matches!(app.overlay, Overlay::None) {
+        return prompts::press(app, key);
     }
-    match keys::action_of(key) {
+    match action {
         Some(action) => act(app, action),
         None => {
             app.say(format!("no key {key}; ? shows the keys"));
@@ -98,7 +100,11 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
             Vec::new()
         }
         A::Suspend => {
-            super::signals::ask_for_stop();
+            if super::signals::can_be_continued() {
+                super::signals::ask_for_stop();
+            } else {
+                app.say("no shell is there to go back to");
+            }
             Vec::new()
         }
         A::Cancel => cancel(app),

@@ -86,7 +86,7 @@ pub fn side_preview(app: &App) -> Option<String> {
         Some(side) => {
             let count = bench.side_selection(side).footprints.len();
             let all = bench.footprints();
-            format!("{count} of {all} footprints; Up and Down move the value, Enter goes on")
+            format!("{count} of {all} footprints; Up Down Tab change it, Enter goes on")
         }
         None => "type < or > and a value".to_owned(),
     })

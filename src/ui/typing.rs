@@ -1,0 +1,207 @@
+//! A line being typed: editing, completion, and what Enter does with it.
+
+use crate::flags::{FootprintSet, Scope};
+
+use super::app::App;
+use super::command::{self, Command, Known};
+use super::deciding;
+use super::jobs::Job;
+use super::key::{Code, Key};
+use super::keys::Action;
+use super::line::Edit;
+use super::looking;
+use super::overlay::{FlagOrder, LinePrompt, Overlay, Purpose};
+use super::side::Side;
+use super::update::act;
+
+/// Asks for one side of a value, beginning with the value under the cursor.
+pub fn open_side(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return looking::no_granule(app) };
+    let text = match (bench.side, bench.layer.value(bench.cursor)) {
+        (Some(side), _) => format!("{} {}", side.relation.symbol(), side.value),
+        (None, Some(value)) => format!("< {value:.2}"),
+        (None, None) => "< ".to_owned(),
+    };
+    bench.anchor = None;
+    bench.side = Side::parse(&text).ok();
+    app.overlay = Overlay::Line(LinePrompt::new(Purpose::Side, &text));
+    Vec::new()
+}
+
+/// Puts pasted text into the line being typed.
+pub fn paste(app: &mut App, text: &str) -> Vec<Job> {
+    if let Overlay::Line(prompt) = &mut app.overlay {
+        prompt.line.insert(text);
+        prompt.forget_completions();
+        changed(app);
+    }
+    Vec::new()
+}
+
+/// Leaves the line without doing anything.
+pub fn give_up(app: &mut App, prompt: &LinePrompt) -> Vec<Job> {
+    if prompt.purpose == Purpose::Side
+        && let Some(bench) = app.bench_mut()
+    {
+        bench.side = None;
+    }
+    Vec::new()
+}
+
+/// Takes a key into the line being typed.
+pub fn press(app: &mut App, key: Key, mut prompt: LinePrompt) -> Vec<Job> {
+    let is_command = prompt.purpose == Purpose::Command;
+    match key.code {
+        Code::Enter => return submit(app, prompt),
+        Code::Tab | Code::BackTab if is_command => {
+            let known = known(app);
+            prompt.complete(key.code == Code::Tab, |text| command::completions(text, &known));
+        }
+        Code::Up | Code::Down if is_command => {
+            let older = key.code == Code::Up;
+            let found = if older { app.history.older() } else { app.history.newer() };
+            if let Some(text) = found {
+                prompt = LinePrompt::new(Purpose::Command, text);
+            }
+        }
+        Code::Tab if prompt.purpose == Purpose::Side => {
+            if let Ok(side) = Side::parse(prompt.line.text()) {
+                let text = format!("{} {}", side.relation.opposite().symbol(), side.value);
+                prompt = LinePrompt::new(Purpose::Side, &text);
+            }
+        }
+        Code::Up | Code::Down if prompt.purpose == Purpose::Side => {
+            nudge(app, &mut prompt, key.code == Code::Up);
+        }
+        // Deleting in an empty line leaves it.
+        Code::Backspace if prompt.line.text().is_empty() => return give_up(app, &prompt),
+        _ => {
+            if prompt.line.press(key) == Edit::Changed {
+                prompt.forget_completions();
+                prompt.problem.clear();
+            }
+        }
+    }
+    app.overlay = Overlay::Line(prompt);
+    changed(app);
+    Vec::new()
+}
+
+/// The side being typed is shown on the map at once.
+fn changed(app: &mut App) {
+    let Overlay::Line(prompt) = &app.overlay else { return };
+    if prompt.purpose != Purpose::Side {
+        return;
+    }
+    let side = Side::parse(prompt.line.text()).ok();
+    if let Some(bench) = app.bench_mut() {
+        bench.side = side;
+    }
+}
+
+/// Moves the value of a side by a hundredth of what the colours span.
+fn nudge(app: &App, prompt: &mut LinePrompt, up: bool) {
+    let Some(bench) = app.bench() else { return };
+    let Ok(side) = Side::parse(prompt.line.text()) else { return };
+    let step = (bench.layer.scale.high - bench.layer.scale.low) / 100.0;
+    let value = side.value + if up { step } else { -step };
+    let digits =
+        if step > 0.0 { (1.0 - step.log10().floor()).clamp(0.0, 12.0) as usize } else { 2 };
+    let text = format!("{} {value:.digits$}", side.relation.symbol());
+    *prompt = LinePrompt::new(Purpose::Side, &text);
+}
+
+/// What a command's words can be completed from.
+fn known(app: &App) -> Known {
+    let Some(bench) = app.bench() else { return Known::default() };
+    let vocabulary = &app.outside.campaign.settings().vocabulary;
+    let kinds = vocabulary.of_scope(Scope::Footprint);
+    Known {
+        layers: bench.suggested.clone(),
+        flags: kinds.iter().map(|kind| kind.name.clone()).collect(),
+    }
+}
+
+/// Enter: the line is what it is for. A line that makes no sense stays, with the reason.
+fn submit(app: &mut App, mut prompt: LinePrompt) -> Vec<Job> {
+    let text = prompt.line.text().trim().to_owned();
+    match prompt.purpose.clone() {
+        Purpose::Command if text.is_empty() => Vec::new(),
+        Purpose::Command => match command::parse(&text) {
+            Ok(command) => {
+                app.history.keep(&text);
+                run(app, command)
+            }
+            Err(problem) => {
+                prompt.problem = problem;
+                app.overlay = Overlay::Line(prompt);
+                Vec::new()
+            }
+        },
+        Purpose::Side => match Side::parse(&text) {
+            Ok(side) => select_side(app, side),
+            Err(problem) => {
+                prompt.problem = problem;
+                app.overlay = Overlay::Line(prompt);
+                Vec::new()
+            }
+        },
+        Purpose::Reason(order) => deciding::carry_out(app, order, words(&text)),
+        Purpose::Aside => deciding::change(app, |record, now| {
+            record.set_aside(&text, now).map(|()| "set aside".to_owned())
+        }),
+        Purpose::Comment(selection) => comment(app, &selection.footprints, &text),
+    }
+}
+
+fn words(text: &str) -> Option<String> {
+    (!text.is_empty()).then(|| text.to_owned())
+}
+
+fn comment(app: &mut App, footprints: &FootprintSet, text: &str) -> Vec<Job> {
+    deciding::change(app, |record, now| {
+        record.comment(footprints, text, now).map(|()| "remark written down".to_owned())
+    })
+}
+
+/// Selects one side and goes on to the choice of the flag.
+fn select_side(app: &mut App, side: Side) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return looking::no_granule(app) };
+    if bench.side_selection(side).footprints.is_empty() {
+        bench.side = None;
+        app.warn("no footprint lies on that side");
+        return Vec::new();
+    }
+    bench.side = Some(side);
+    act(app, Action::Flag)
+}
+
+/// Carries a command out.
+fn run(app: &mut App, command: Command) -> Vec<Job> {
+    match command {
+        Command::Action(action) => act(app, action),
+        Command::Layer(text) => looking::show_layer(app, &text),
+        Command::Go(wavenumber) => looking::go_to_channel(app, wavenumber),
+        Command::Flag(flag, why) => give(app, true, flag, why),
+        Command::Withdraw(flag, why) => give(app, false, flag, why),
+        Command::Side(side) => select_side(app, side),
+        Command::Range(range) => looking::set_range(app, range),
+        Command::Aside(why) => deciding::change(app, |record, now| {
+            record.set_aside(&why, now).map(|()| "set aside".to_owned())
+        }),
+        Command::Comment(text) => match app.bench() {
+            Some(bench) => {
+                let footprints = bench.selection().footprints;
+                comment(app, &footprints, &text)
+            }
+            None => looking::no_granule(app),
+        },
+        Command::Export(folder) => deciding::export(app, folder),
+    }
+}
+
+fn give(app: &mut App, give: bool, flag: String, why: Option<String>) -> Vec<Job> {
+    let Some(bench) = app.bench() else { return looking::no_granule(app) };
+    let selection = bench.selection();
+    deciding::carry_out(app, FlagOrder { give, flag, selection }, why)
+}
