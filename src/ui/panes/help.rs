@@ -30,45 +30,68 @@ pub struct HelpGroup {
 /// The widest column of keys.
 const KEYS: usize = 16;
 
-/// Draws the help over the screen.
+/// The widest column of lines.
+const WIDEST: u16 = 72;
+
+/// Draws the help over the screen, in two columns where one is too long and there is room.
 pub fn draw(view: &HelpView<'_>, theme: &Theme, screen: Rect, buffer: &mut Buffer) {
-    let keys = view
-        .groups
-        .iter()
-        .flat_map(|group| &group.rows)
-        .map(|(key, _)| key.width())
-        .max()
-        .unwrap_or(0)
-        .min(KEYS);
-    let width = 72.min(screen.width.saturating_sub(6));
+    let keys = keys_width(view.groups);
+    let width = WIDEST.min(screen.width.saturating_sub(6));
     let lines = lines(view.groups, usize::from(width).saturating_sub(keys + 4));
+    let is_long = lines.len() + 2 > usize::from(screen.height);
+    let columns: Vec<&[Line<'_>]> = match is_long && screen.width >= 2 * WIDEST + 6 {
+        true => halves(&lines).to_vec(),
+        false => vec![&lines],
+    };
+    let longest = columns.iter().map(|column| column.len()).max().unwrap_or(0);
     let popup = Popup {
         title: view.title,
         foot: if theme.ascii { "up/down scroll, Esc closes" } else { "↑↓ scroll, Esc closes" },
-        wanted: (width, lines.len() as u16),
+        wanted: (width * columns.len() as u16, longest as u16),
     };
     let Some(inner) = popup.draw(theme, screen, buffer) else { return };
-    let first = view.scroll.min(lines.len().saturating_sub(usize::from(inner.height)));
-    let keys = keys as u16 + 2;
-    for (line, row) in lines.iter().skip(first).zip(inner.rows()) {
-        let text = Rect {
-            x: row.x + (keys + 2).min(row.width),
-            width: row.width.saturating_sub(keys + 2),
-            ..row
-        };
-        let key = Rect { x: row.x + 2.min(row.width), width: keys.min(row.width) - 1, ..row };
-        match line {
-            Line::Title(title) => {
-                put(row, title, theme.style(Tone::Strong), theme.ascii, buffer);
-            }
-            Line::Key(name, does) => {
-                put(key, name, theme.style(Tone::Accent), theme.ascii, buffer);
-                put(text, does, theme.style(Tone::Plain), theme.ascii, buffer);
-            }
+    let first = view.scroll.min(longest.saturating_sub(usize::from(inner.height)));
+    let each = inner.width / columns.len() as u16;
+    for (number, lines) in columns.iter().enumerate() {
+        let area = Rect { x: inner.x + each * number as u16, width: each, ..inner };
+        for (line, row) in lines.iter().skip(first).zip(area.rows()) {
+            draw_line(line, keys as u16 + 2, theme, row, buffer);
         }
     }
     let edge = Rect { width: inner.width + 1, ..inner };
-    draw_more(edge, first, lines.len(), theme, buffer);
+    draw_more(edge, first, longest, theme, buffer);
+}
+
+fn keys_width(groups: &[HelpGroup]) -> usize {
+    let rows = groups.iter().flat_map(|group| &group.rows);
+    rows.map(|(key, _)| key.width()).max().unwrap_or(0).min(KEYS)
+}
+
+/// The lines in two parts of about the same length, cut between two groups.
+fn halves<'a, 'b>(lines: &'a [Line<'b>]) -> [&'a [Line<'b>]; 2] {
+    let gaps = lines.iter().enumerate().filter(|(_, line)| matches!(line, Line::Title("")));
+    let middle = lines.len() / 2;
+    match gaps.map(|(index, _)| index).min_by_key(|index| index.abs_diff(middle)) {
+        Some(gap) => [&lines[..gap], &lines[gap + 1..]],
+        None => [lines, &[]],
+    }
+}
+
+fn draw_line(line: &Line<'_>, keys: u16, theme: &Theme, row: Rect, buffer: &mut Buffer) {
+    let from = |columns: u16| {
+        let columns = columns.min(row.width);
+        Rect { x: row.x + columns, width: row.width - columns, ..row }
+    };
+    match line {
+        Line::Title(title) => {
+            put(row, title, theme.style(Tone::Strong), theme.ascii, buffer);
+        }
+        Line::Key(name, does) => {
+            let key = Rect { width: from(2).width.min(keys - 1), ..from(2) };
+            put(key, name, theme.style(Tone::Accent), theme.ascii, buffer);
+            put(from(keys + 2), does, theme.style(Tone::Plain), theme.ascii, buffer);
+        }
+    }
 }
 
 enum Line<'a> {
@@ -98,6 +121,7 @@ fn lines(groups: &[HelpGroup], width: usize) -> Vec<Line<'_>> {
 mod tests {
     use super::*;
     use crate::ui::widgets::{Screen, THEME};
+    use proptest::prelude::*;
 
     fn groups() -> Vec<HelpGroup> {
         let row = |key: &str, does: &str| (key.to_string(), does.to_string());
@@ -143,5 +167,24 @@ mod tests {
         let lines = screen.lines();
         assert!(lines[4].contains("cursor, or the box"), "{lines:?}");
         assert!(lines[1].contains('▴'), "{lines:?}");
+    }
+
+    #[test]
+    fn a_long_list_stands_in_two_columns_where_there_is_room() {
+        let mut screen = Screen::new(160, 6);
+        let view = HelpView { title: "Keys", groups: &groups(), scroll: 0 };
+        draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        let lines = screen.lines();
+        assert!(lines[1].contains("Moving") && lines[1].contains("Deciding"), "{lines:#?}");
+        assert!(!lines.iter().any(|line| line.contains('▾')), "all of it is on show: {lines:#?}");
+    }
+
+    proptest! {
+        #[test]
+        fn any_size_is_survived(width in 0u16..250, height in 0u16..80, scroll in 0usize..99) {
+            let mut screen = Screen::new(width, height);
+            let view = HelpView { title: "Keys", groups: &groups(), scroll };
+            draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        }
     }
 }

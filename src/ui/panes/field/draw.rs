@@ -111,7 +111,7 @@ mod tests {
     fn half_blocks_show_two_footprints_in_a_cell() {
         let placement = Placement::unfold(&[2, 2], None);
         let values = [200.0, 300.0, 300.0, f64::NAN];
-        let mut screen = Screen::new(5, 3);
+        let mut screen = Screen::new(4, 3);
         draw(&view(&placement, &values), &THEME, screen.area(), &mut screen.buffer);
         // Two columns and four rows of dots: each footprint is one dot wide and two high.
         let (low, high) = (Color::Indexed(53), Color::Indexed(220));

@@ -27,7 +27,7 @@ pub struct Geometry {
 
 impl Geometry {
     /// Spreads a map over an area, so that both directions are stretched about alike and, where there
-    /// is room, by whole numbers. `zoom` halves what is shown as often, around
+    /// is room, by whole or half numbers. `zoom` halves what is shown as often, around
     /// the cursor; what is shown moves on by half its size at a time, so that most moves of the
     /// cursor leave the picture as it is. `None` where there is nothing to show or no room.
     pub fn new(
@@ -132,8 +132,9 @@ fn spread(room: (usize, usize), extent: (usize, usize), dots: u16) -> (usize, us
     let across = room.0 as f64 / extent.0 as f64;
     let down = room.1 as f64 / extent.1 as f64 * height;
     let fit = |scale: f64, extent: usize, room: usize| {
-        let size = if scale >= 1.0 { scale.floor() * extent as f64 } else { scale * extent as f64 };
-        (size as usize).clamp(1, room)
+        // Halves still make a regular pattern, of one dot and two by turns.
+        let scale = if scale >= 1.0 { (2.0 * scale).floor() / 2.0 } else { scale };
+        ((scale * extent as f64) as usize).clamp(1, room)
     };
     (
         fit(across.min(STRETCH * down), extent.0, room.0),

@@ -46,14 +46,14 @@ fn draw_cursor(
 ) {
     put_mark((x, y), if theme.ascii { 'X' } else { '╋' }, theme, buffer);
     let [right, down] = if theme.ascii { [">", "v"] } else { ["▸", "▾"] };
-    let free = if theme.ascii { [" ", "-", "="] } else { [" ", "─", "━"] };
+    let rules = if theme.ascii { ["-", "="] } else { ["─", "━"] };
     let ticks = [(geometry.area.x.saturating_sub(1), y, right), (x, pane.y, down)];
     for (x, y, sign) in ticks {
         if !pane.contains((x, y).into()) || geometry.area.contains((x, y).into()) {
             continue;
         }
         let Some(cell) = buffer.cell_mut((x, y)) else { continue };
-        if free.contains(&cell.symbol()) {
+        if y != pane.y || rules.contains(&cell.symbol()) {
             cell.set_symbol(sign).set_style(theme.style(Tone::Accent));
         } else {
             // A letter of the title stays readable.

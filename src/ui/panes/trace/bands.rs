@@ -84,23 +84,22 @@ fn is_free(place: Rect, buffer: &Buffer) -> bool {
 /// Lines from a name to both ends of its extent, or up to the next name.
 fn draw_extent(name: Rect, extent: Rect, theme: &Theme, buffer: &mut Buffer) {
     let [first, middle, last] = if theme.ascii { ["-", "-", "-"] } else { ["╶", "─", "╴"] };
-    let mut draw = |x: u16, end: bool, sign: &str| {
-        let is_blank = |x: u16| buffer.cell((x, name.y)).is_some_and(|cell| cell.symbol() == " ");
+    let mut draw = |x: u16, sign: &str| {
+        let is_blank = |x: u16| buffer.cell((x, name.y)).is_none_or(|cell| cell.symbol() == " ");
         let beyond = if x < name.x { x.wrapping_sub(1) } else { x + 1 };
-        let goes_on = is_blank(x) && (end || is_blank(beyond));
+        let goes_on = is_blank(x) && is_blank(beyond);
         if let Some(cell) = buffer.cell_mut((x, name.y)).filter(|_| goes_on) {
             cell.set_symbol(sign).set_style(theme.style(Tone::Faint));
         }
         goes_on
     };
     for x in (extent.x..name.x).rev() {
-        if !draw(x, x == extent.x, if x == extent.x { first } else { middle }) {
+        if !draw(x, if x == extent.x { first } else { middle }) {
             break;
         }
     }
     for x in name.right()..extent.right() {
-        let end = x == extent.right() - 1;
-        if !draw(x, end, if end { last } else { middle }) {
+        if !draw(x, if x == extent.right() - 1 { last } else { middle }) {
             break;
         }
     }
