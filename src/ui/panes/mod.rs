@@ -13,6 +13,8 @@ pub mod status;
 pub mod trace;
 pub mod tray;
 
+#[cfg(test)]
+mod any_size;
 mod layout;
 
 pub use layout::{Pane, SMALLEST, ScreenLayout, draw_too_small};
