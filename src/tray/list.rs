@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 
 use crate::flags::{Campaign, GranuleState, file_name_part};
+use crate::system::clean_text;
 
 use super::entry::{Entry, Standing, names};
 
@@ -59,10 +60,14 @@ impl Tray {
         }
     }
 
-    /// Takes down why a granule can't be used, or that it can after all.
+    /// Takes down why a granule can't be used, or that it can after all. Its path, with which
+    /// messages about files begin, is left out: the row names the file.
     pub fn set_error(&mut self, number: usize, error: Option<String>) {
         if let Some(entry) = self.entries.get_mut(number) {
-            entry.error = error;
+            let path = format!("{}: ", clean_text(&entry.path.to_string_lossy()));
+            let without_path =
+                |why: String| why.strip_prefix(&path).map(str::to_owned).unwrap_or(why);
+            entry.error = error.map(without_path);
         }
     }
 
@@ -99,7 +104,8 @@ mod tests {
 
     fn tray() -> Tray {
         let mut tray = Tray::new(["a.nc", "b.nc", "c.nc", "d.nc"].map(PathBuf::from).to_vec());
-        tray.set_error(1, Some("no spectra".to_owned()));
+        tray.set_error(1, Some("b.nc: no spectra".to_owned()));
+        assert_eq!(tray.entry(1).unwrap().error.as_deref(), Some("no spectra"));
         for signed in [0, 2] {
             tray.set_standing(signed, Standing { state: GranuleState::SignedOff, counts: None });
         }

@@ -19,6 +19,9 @@ use super::spectrum_window::SpectrumWindow;
 /// The footprints that can be pinned at once; more spectra cannot be told apart.
 pub const MOST_PINS: usize = 4;
 
+/// The channel nearest to this wavenumber (cm-1) is in hand at first: in a clean window.
+const FIRST_CHANNEL: f64 = 900.0;
+
 /// The granule on the table.
 pub struct Bench {
     /// Its entry in the Tray.
@@ -92,11 +95,10 @@ impl Bench {
         };
         let indices = review.first_look().into_iter().map(index).collect();
         let windows = review.window_channels();
-        let first_window = windows.first().map_or(low, |channel| channel.wavenumber);
         Bench {
             entry,
             placement,
-            channel: channels.nearest(first_window),
+            channel: channels.nearest(FIRST_CHANNEL),
             channels,
             record: RecordState::Reading,
             cursor: 0,

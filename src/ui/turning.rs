@@ -96,8 +96,10 @@ pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
 /// A file that could not be opened is named in its row; the next one in the same direction is
 /// tried. A file that was opened by hand leaves the table empty instead.
 pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: String) -> Vec<Job> {
-    let name = app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default();
-    app.tray.set_error(entry, Some(why.clone()));
+    app.tray.set_error(entry, Some(why));
+    let row = app.tray.entry(entry);
+    let name = row.map(|entry| entry.name.clone()).unwrap_or_default();
+    let why = row.and_then(|entry| entry.error.clone()).unwrap_or_default();
     app.table = Table::Empty;
     let next = match direction {
         Direction::Forward => app.tray.next(Some(entry)),
@@ -109,7 +111,7 @@ pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: St
         if app.tray.len() > 1 {
             none_is_left(app);
         } else {
-            app.message = (why, Tone::Bad);
+            app.message = (format!("{name}: {why}"), Tone::Bad);
         }
         return Vec::new();
     };
