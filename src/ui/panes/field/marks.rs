@@ -46,7 +46,7 @@ fn draw_cursor(
 ) {
     put_mark((x, y), if theme.ascii { 'X' } else { '╋' }, theme, buffer);
     let [right, down] = if theme.ascii { [">", "v"] } else { ["▸", "▾"] };
-    let rules = if theme.ascii { ["-", "="] } else { ["─", "━"] };
+    let rules = if theme.ascii { [" ", "-", "="] } else { [" ", "─", "━"] };
     let ticks = [(geometry.area.x.saturating_sub(1), y, right), (x, pane.y, down)];
     for (x, y, sign) in ticks {
         if !pane.contains((x, y).into()) || geometry.area.contains((x, y).into()) {
