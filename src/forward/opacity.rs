@@ -10,26 +10,32 @@ use super::gas::Gas;
 use super::grid::Grid;
 use super::line::{self, Line};
 
-/// How much coarser the wings' grid is.
-const WING_FACTOR: usize = 8;
+/// Spacing of the wings' grid, cm-1.
+const WING_STEP: f64 = 0.1;
 /// An absorber whose optical depth at the line centre stays below this is left out.
 const NEGLIGIBLE: f64 = 1e-6;
 
 /// Optical depth along the vertical of one layer at every point of the grid.
 pub fn optical_depth(grid: &Grid, layer: &Layer) -> Vec<f32> {
-    let coarse_grid = grid.coarser(WING_FACTOR);
+    let factor = wing_factor(grid);
+    let coarse_grid = grid.coarser(factor);
     let mut coarse = continuum::optical_depth(&coarse_grid, layer);
     let mut fine = vec![0.0f32; grid.count];
     let reach = LONGEST_REACH;
     for line in line::between(grid.start - reach, coarse_grid.end() + reach) {
         add_line(line, layer, grid, &coarse_grid, &mut fine, &mut coarse);
     }
-    grid.add_interpolated(WING_FACTOR, &coarse, &mut fine);
+    grid.add_interpolated(factor, &coarse, &mut fine);
     for value in &mut fine {
         // Cores are differences; rounding may leave a trace below zero.
         *value = value.max(0.0);
     }
     fine
+}
+
+/// How much coarser the wings' grid is.
+fn wing_factor(grid: &Grid) -> usize {
+    (WING_STEP / grid.step).round().max(1.0) as usize
 }
 
 /// Wings are cut here, cm-1 (Clough, Kneizys & Davies 1989 for water).
@@ -43,7 +49,7 @@ fn reach(gas: Gas) -> f64 {
 }
 
 /// Far wings of CO2 fall faster than a Lorentz line: factor on the wing at a distance (cm-1).
-fn wing_factor(gas: Gas, distance: f64) -> f64 {
+fn wing_decay(gas: Gas, distance: f64) -> f64 {
     const FROM: f64 = 2.0;
     const SCALE: f64 = 4.0;
     if gas == Gas::Co2 && distance > FROM { ((FROM - distance) / SCALE).exp() } else { 1.0 }
@@ -94,7 +100,7 @@ fn add_wing(
     let scale = area * lorentz / std::f64::consts::PI;
     let square = lorentz * lorentz;
     // The wing reaches zero at its cut, so that no step is left there.
-    let pedestal = scale / (reach * reach + square) * wing_factor(line.gas, reach);
+    let pedestal = scale / (reach * reach + square) * wing_decay(line.gas, reach);
     let range = grid.around(line.centre, reach);
     for (offset, value) in values[range.clone()].iter_mut().enumerate() {
         let distance = (grid.at(range.start + offset) - line.centre).abs();
@@ -102,7 +108,7 @@ fn add_wing(
             let inside = distance / core;
             edge * (2.0 - inside * inside)
         } else {
-            scale / (distance * distance + square) * wing_factor(line.gas, distance)
+            scale / (distance * distance + square) * wing_decay(line.gas, distance)
         };
         *value += (wing - pedestal) as f32;
     }
@@ -209,10 +215,10 @@ mod tests {
             column[Gas::Co.index()] = 1e18;
             let layer = Layer { pressure, temperature: 296.0, water_pressure: 0.0, column };
             let grid = Grid::covering(2123.0, 2163.0, 0.0125);
-            let coarse_grid = grid.coarser(WING_FACTOR);
+            let coarse_grid = grid.coarser(wing_factor(&grid));
             let (mut fine, mut coarse) = (vec![0.0; grid.count], vec![0.0; coarse_grid.count]);
             add_line(&line, &layer, &grid, &coarse_grid, &mut fine, &mut coarse);
-            grid.add_interpolated(WING_FACTOR, &coarse, &mut fine);
+            grid.add_interpolated(wing_factor(&grid), &coarse, &mut fine);
             let area: f64 = fine.iter().map(|v| f64::from(*v)).sum::<f64>() * grid.step;
             // Beyond 12 cm-1 lies 2 gamma/(12 pi) = 0.3 % of the area at 1 atm, and as much again
             // goes with the pedestal; interpolating the wings adds less than 1 %.

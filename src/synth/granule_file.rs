@@ -135,8 +135,8 @@ fn describe(
         (
             "source",
             format!(
-                "synthetic: forward model with approximate spectroscopy, {} of the imaginary \
-                 Brindle sounder, scene {}, seed {}",
+                "synthetic: forward model with approximate spectroscopy; imaginary Brindle sounder \
+                 ({}); scene {}, seed {}",
                 maker.instrument.description,
                 recipe.scene.label(),
                 recipe.seed
