@@ -6,6 +6,8 @@
 
 mod defects;
 mod field;
+mod file_values;
+mod file_variables;
 mod granule_file;
 mod instrument;
 mod noise;

@@ -17,7 +17,7 @@ pub fn noise(
     band: &Band,
     radiances: &[f32],
 ) -> Vec<f32> {
-    let mut random = ChaCha8Rng::seed_from_u64(seed ^ 0x5EED_0F_4015E);
+    let mut random = ChaCha8Rng::seed_from_u64(seed ^ 0x05EE_D0F4_015E);
     random.set_stream((footprint as u64) << 4 | band_number as u64);
     let kernel = band.correlation.kernel();
     let margin = kernel.len() / 2;

@@ -38,7 +38,7 @@ impl Truth {
         };
         let clear: f64 = clouds().map(|cloud| 1.0 - cloud.amount).product();
         // Covers ascend in height.
-        let highest = clouds().last();
+        let highest = clouds().next_back();
         let dust = sighted.footprint.covers.iter().filter(|c| c.particles == Particles::Dust);
         Truth {
             cloud_amount: (1.0 - clear) as f32,
