@@ -1,11 +1,12 @@
 //! What was decided about one granule: everybody's decisions, and the ledger that ours go to.
 
+use std::collections::HashSet;
 use std::time::Duration;
 
 use jiff::Timestamp;
 
 use crate::flags::{
-    Act, Author, Campaign, CampaignError, Counts, Decision, FlagState, GranuleIdentity,
+    Act, Author, Campaign, CampaignError, Counts, Decision, DecisionId, FlagState, GranuleIdentity,
     LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, Vocabulary, read_ledgers,
 };
 
@@ -68,6 +69,23 @@ impl Record {
     fn fold(&mut self) {
         self.state = FlagState::replay(self.footprints, &self.decisions, &self.vocabulary);
         self.counts = self.state.counts(&self.vocabulary);
+    }
+
+    /// Takes over what the ledgers hold by now: others may have decided meanwhile. Returns how many
+    /// decisions were not known here.
+    pub fn take_over(&mut self, reading: LedgerReading) -> usize {
+        let known: HashSet<&DecisionId> = self.decisions.iter().map(|one| &one.id).collect();
+        let new: Vec<Decision> =
+            reading.decisions.into_iter().filter(|one| !known.contains(&one.id)).collect();
+        self.problems = reading.problems.iter().map(ToString::to_string).collect();
+        let count = new.len();
+        if count > 0 {
+            self.writer.saw(&new);
+            self.decisions.extend(new);
+            self.decisions.sort_by(|one, next| one.order().cmp(&next.order()));
+            self.fold();
+        }
+        count
     }
 
     /// Hears what the writer reports. Returns whether anything changed.

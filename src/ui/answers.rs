@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 use std::sync::Arc;
 
+use crate::flags::LedgerReading;
 use crate::layers::{Layer, LayerUnit};
 use crate::review::{Record, Review, Spectrum};
 use crate::tray::Standing;
@@ -26,6 +27,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Filling { request, share } => filling(app, request, share),
         Answer::Filled { request, found } => filled(app, request, found),
         Answer::Record { request, found } => record(app, request, found),
+        Answer::Reread { request, found } => reread(app, request, found),
         Answer::Layer { request, found } => layer(app, request, found),
         Answer::Indices { request, found } => indices(app, request, found),
         Answer::Quality { request, found } => quality(app, request, found),
@@ -147,6 +149,21 @@ fn record(
             Vec::new()
         }
     }
+}
+
+/// Shows what others have decided meanwhile.
+fn reread(app: &mut App, request: u64, found: LedgerReading) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.reread == request) else {
+        return Vec::new();
+    };
+    bench.awaited.reread = 0;
+    let new = bench.record.open_mut().map_or(0, |record| record.take_over(found));
+    if new > 0 {
+        app.changed = true;
+        deciding::update_tray(app);
+        app.say(format!("{new} decisions of others came in"));
+    }
+    Vec::new()
 }
 
 /// Goes back to where one was, unless keys have gone somewhere else by now.

@@ -81,6 +81,8 @@ pub struct Filling {
 pub struct Awaited {
     /// Reading the ledgers.
     pub record: u64,
+    /// Reading the ledgers once more.
+    pub reread: u64,
     /// Evaluating the layer.
     pub layer: u64,
     /// Reading the spectrum under the cursor.

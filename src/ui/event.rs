@@ -15,6 +15,8 @@ pub enum Event {
     Answer(Answer),
     /// The ledger's writer may have reported.
     LedgerMoved,
+    /// A while has passed without anything else.
+    Quiet,
     /// Stop to the shell, as Ctrl-Z asks for.
     Suspend,
     /// The program has to end now.

@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 use std::sync::Arc;
 
-use crate::flags::GranuleIdentity;
+use crate::flags::{GranuleIdentity, LedgerReading};
 use crate::layers::Layer;
 use crate::review::{Record, Review, Spectrum};
 use crate::system::Cancel;
@@ -44,6 +44,13 @@ pub enum Job {
         request: u64,
         /// The granule.
         review: Arc<Review>,
+    },
+    /// Look whether others have decided something meanwhile.
+    Reread {
+        /// The request.
+        request: u64,
+        /// The granule by its content.
+        identity: GranuleIdentity,
     },
     /// Evaluate the layer on show.
     Layer {
@@ -135,6 +142,13 @@ pub enum Answer {
         request: u64,
         /// The record, and where one was in the granule the last time.
         found: Result<(Box<Record>, Option<Place>), String>,
+    },
+    /// The ledgers were read once more.
+    Reread {
+        /// The request.
+        request: u64,
+        /// What they hold.
+        found: LedgerReading,
     },
     /// The layer was evaluated.
     Layer {

@@ -110,6 +110,23 @@ fn undo_and_redo_go_all_the_way_and_survive_a_restart() {
 }
 
 #[test]
+fn two_people_see_each_other() {
+    let (place, mut ada) = one_granule();
+    let mut bo = place.review_by("bo", &["lowen_001.nc"]);
+    bo.keys("f c Right f d");
+    ada.keys("a");
+    ada.event(Event::Quiet);
+    ada.settle();
+    assert_eq!(ada.message(), "2 decisions of others came in");
+    assert_eq!((ada.flagged("cloudy"), ada.flagged("dust_or_ash")), (vec![0], vec![1]));
+    ada.keys("u");
+    assert_eq!(ada.message(), "undone: looked at 1", "one's own decisions are undone");
+    ada.event(Event::Quiet);
+    ada.settle();
+    assert_eq!(ada.message(), "undone: looked at 1", "nothing new is not worth a word");
+}
+
+#[test]
 fn the_same_flag_once_more() {
     let (_place, mut trial) = one_granule();
     trial.keys("f b Down F");

@@ -8,6 +8,7 @@ use std::time::Duration;
 use super::app::App;
 use super::draw::draw;
 use super::event::{Ending, Event};
+use super::jobs::Answer;
 use super::runner::Runner;
 use super::terminal::Screen;
 use super::update::update;
@@ -15,6 +16,8 @@ use super::{keyboard, signals, terminal, turning, work};
 
 /// While decisions are on their way to the disk, the ledger's writer is asked this often.
 const LEDGER_PAUSE: Duration = Duration::from_millis(15);
+/// After so long without any event the ledgers are read once more: others may have decided.
+const QUIET: Duration = Duration::from_secs(10);
 /// How long the last decisions may take on the way out after a signal.
 const LAST_WRITES: Duration = Duration::from_secs(4);
 
@@ -58,19 +61,23 @@ pub fn run(mut app: App) -> io::Result<Ended> {
 
 /// Waits for the next event. While decisions are pending the writer may have news at any moment.
 fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
-    if app.pending() == 0 || (app.write_failure().is_some() && !app.leaving) {
-        return events.recv().ok();
-    }
-    match events.recv_timeout(LEDGER_PAUSE) {
+    let writing = app.pending() > 0 && (app.write_failure().is_none() || app.leaving);
+    let (pause, passed) = match writing {
+        true => (LEDGER_PAUSE, Event::LedgerMoved),
+        false => (QUIET, Event::Quiet),
+    };
+    match events.recv_timeout(pause) {
         Ok(event) => Some(event),
-        Err(RecvTimeoutError::Timeout) => Some(Event::LedgerMoved),
+        Err(RecvTimeoutError::Timeout) => Some(passed),
         Err(RecvTimeoutError::Disconnected) => None,
     }
 }
 
 fn handle(app: &mut App, screen: &mut Screen, runner: &mut Runner, event: Event) {
-    // Whether the ledger's writer has news shows itself in `update`.
-    app.changed |= !matches!(event, Event::LedgerMoved);
+    // Whether the ledgers have news shows itself in `update`.
+    let asking =
+        matches!(event, Event::LedgerMoved | Event::Quiet | Event::Answer(Answer::Reread { .. }));
+    app.changed |= !asking;
     let mouse = app.mouse;
     for job in update(app, event) {
         runner.start(job);

@@ -42,7 +42,7 @@ fn lane_of(job: &Job) -> Lane {
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {
             Lane::Alone
         }
-        Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
+        Job::Reread { .. } | Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
     }
 }
 

@@ -92,14 +92,25 @@ impl Place {
         trial
     }
 
-    /// The same with no job done yet.
+    /// The same by somebody else.
+    pub fn review_by(&self, person: &str, names: &[&str]) -> Trial {
+        let mut trial = self.held(person, names);
+        trial.settle();
+        trial
+    }
+
+    /// A review by `ada` with no job done yet.
     pub fn review_held(&self, names: &[&str]) -> Trial {
+        self.held("ada", names)
+    }
+
+    fn held(&self, person: &str, names: &[&str]) -> Trial {
         let campaign = Campaign::open_or_create(&self.path("campaign")).unwrap();
         let outside = Outside {
             reader: ReaderProgram::in_process(),
             limits: ReadLimits::default(),
             campaign,
-            author: Author { person: "ada".into(), host: "desk".into(), process: 7 },
+            author: Author { person: person.into(), host: "desk".into(), process: 7 },
             program: "0.0.0".to_owned(),
             clock: Arc::new(|| "2026-03-01T12:00:00Z".parse().unwrap()),
             first_layer: None,

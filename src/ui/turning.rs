@@ -182,3 +182,13 @@ pub fn ledger_moved(app: &mut App) -> Vec<Job> {
     }
     super::deciding::export_if_kept(app)
 }
+
+/// Looks whether others have decided something about the granule on the table.
+pub fn look_for_others(app: &mut App) -> Vec<Job> {
+    let request = app.request();
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    let Some(record) = bench.record.open() else { return Vec::new() };
+    let identity = record.identity().clone();
+    bench.awaited.reread = request;
+    vec![Job::Reread { request, identity }]
+}

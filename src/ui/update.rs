@@ -17,6 +17,7 @@ pub fn update(app: &mut App, event: Event) -> Vec<Job> {
         Event::Input(Input::Mouse(mouse)) => click(app, mouse),
         Event::Answer(answer) => answers::take(app, answer),
         Event::LedgerMoved => turning::ledger_moved(app),
+        Event::Quiet => turning::look_for_others(app),
         Event::Suspend => {
             app.suspend = true;
             Vec::new()

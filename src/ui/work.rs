@@ -36,6 +36,10 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = record(review, outside);
             send(Answer::Record { request: *request, found });
         }
+        Job::Reread { request, identity } => {
+            let found = read_ledgers(&outside.campaign, identity);
+            send(Answer::Reread { request: *request, found });
+        }
         Job::Layer { request, review, text } => {
             send(Answer::Layer { request: *request, found: review.layer(text) });
         }
@@ -74,7 +78,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         }
         Job::Quality { request, .. } => Answer::Quality { request: *request, found: Vec::new() },
         Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
-        Job::Keep { .. } => return None,
+        Job::Reread { .. } | Job::Keep { .. } => return None,
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
 }
