@@ -78,7 +78,7 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     app.table = Table::Bench(Box::new(bench));
     match problems {
         0 => app.say(""),
-        count => app.say(format!("{count} problems or guesses: !")),
+        count => app.say(format!("{count} found missing, guessed or odd: ! shows")),
     }
     jobs.extend(looking::spectrum(app));
     jobs.extend(looking::refresh_layer(app));
@@ -137,9 +137,13 @@ fn record(
         Ok((record, place)) => {
             let problem = record.problems().first().cloned();
             bench.record = RecordState::Open(record);
+            let asked_early = std::mem::take(&mut bench.asked_early);
             deciding::update_tray(app);
             if let Some(problem) = problem {
                 app.warn(problem);
+            } else if asked_early {
+                // The key may have been meant for what was on show then, so it is not carried out.
+                app.say("the ledgers are read: press the key again");
             }
             place.map_or_else(Vec::new, |place| go_to_place(app, &place))
         }

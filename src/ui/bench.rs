@@ -72,6 +72,8 @@ pub struct Bench {
     pub awaited: Awaited,
     /// An export that waits for the last decisions to be on the disk: into which folder.
     pub export_waits: Option<PathBuf>,
+    /// A key wanted to decide something while the ledgers were still being read.
+    pub asked_early: bool,
     /// A key has changed what is on show, so that a kept place comes too late.
     pub touched: bool,
 }
@@ -119,6 +121,7 @@ impl Bench {
             filling: Filling::default(),
             awaited: Awaited::default(),
             export_waits: None,
+            asked_early: false,
             touched: false,
             review,
         }

@@ -44,7 +44,10 @@ pub fn change(
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     let outcome = match &mut bench.record {
         RecordState::Open(record) => verb(record, now).map_err(|refusal| refusal.to_string()),
-        RecordState::Reading => Err("one moment: the ledgers are still being read".to_owned()),
+        RecordState::Reading => {
+            bench.asked_early = true;
+            Err("one moment: the ledgers are still being read".to_owned())
+        }
         RecordState::Failed(why) => Err(format!("nothing can be decided: {why}")),
     };
     match outcome {

@@ -65,6 +65,38 @@ fn the_number_on_a_side_shows_while_its_value_is_typed() {
 }
 
 #[test]
+fn what_is_typed_takes_the_place_of_the_value_offered() {
+    let (_place, mut trial) = one_granule();
+    for (typed, line) in [
+        ("t", "bt(900) < 250.00"),
+        ("t 2 5 3", "bt(900) < 253"),
+        ("t Tab 2 5 3", "bt(900) >= 253"),
+        ("t > 2 5 3", "bt(900) >253"),
+        ("t Backspace 5", "bt(900) < 250.05"),
+    ] {
+        trial.keys(typed);
+        assert!(trial.screen(80, 24).contains(line), "{typed}: {}", trial.screen(80, 24));
+        trial.keys("Esc");
+    }
+}
+
+#[test]
+fn a_decision_asked_for_too_early_is_asked_for_again() {
+    let place = Place::with(&["lowen_001.nc"]);
+    let mut trial = place.review_held(&["lowen_001.nc"]);
+    while trial.app.bench().is_none() {
+        for answer in trial.answers_of_next() {
+            trial.event(Event::Answer(answer));
+        }
+    }
+    trial.press("f");
+    assert!(trial.message().starts_with("one moment"), "{}", trial.message());
+    trial.settle();
+    assert_eq!(trial.message(), "the ledgers are read: press the key again");
+    assert_eq!(trial.record().decisions().len(), 0);
+}
+
+#[test]
 fn a_reason_is_asked_for_and_kept() {
     let (_place, mut trial) = one_granule();
     trial.keys("f Tab c").types("cold top").keys("Enter");

@@ -31,6 +31,8 @@ pub struct LinePrompt {
     pub purpose: Purpose,
     /// What was typed.
     pub line: Line,
+    /// The text is an offer of ours, in which nothing was typed yet.
+    pub offered: bool,
     /// What Tab offers, once it was pressed.
     pub completions: Vec<String>,
     /// The completion in hand.
@@ -95,10 +97,16 @@ impl LinePrompt {
         LinePrompt {
             purpose,
             line: Line::new(text),
+            offered: false,
             completions: Vec::new(),
             chosen: None,
             problem: String::new(),
         }
+    }
+
+    /// A prompt with an offer in it, which the first letter typed replaces.
+    pub fn offering(purpose: Purpose, text: &str) -> LinePrompt {
+        LinePrompt { offered: true, ..LinePrompt::new(purpose, text) }
     }
 
     /// Takes the next completion, or the one before, or finds them first.

@@ -8,7 +8,7 @@ use super::deciding;
 use super::jobs::Job;
 use super::key::{Code, Key};
 use super::keys::Action;
-use super::line::Edit;
+use super::line::{Edit, Line};
 use super::looking;
 use super::overlay::{FlagOrder, LinePrompt, Overlay, Purpose};
 use super::side::Side;
@@ -24,7 +24,7 @@ pub fn open_side(app: &mut App) -> Vec<Job> {
     };
     bench.anchor = None;
     bench.side = Side::parse(&text).ok();
-    app.overlay = Overlay::Line(LinePrompt::new(Purpose::Side, &text));
+    app.overlay = Overlay::Line(LinePrompt::offering(Purpose::Side, &text));
     Vec::new()
 }
 
@@ -67,7 +67,7 @@ pub fn press(app: &mut App, key: Key, mut prompt: LinePrompt) -> Vec<Job> {
         Code::Tab if prompt.purpose == Purpose::Side => {
             if let Ok(side) = Side::parse(prompt.line.text()) {
                 let text = format!("{} {}", side.relation.opposite().symbol(), side.value);
-                prompt = LinePrompt::new(Purpose::Side, &text);
+                prompt = LinePrompt::offering(Purpose::Side, &text);
             }
         }
         Code::Up | Code::Down if prompt.purpose == Purpose::Side => {
@@ -76,6 +76,9 @@ pub fn press(app: &mut App, key: Key, mut prompt: LinePrompt) -> Vec<Job> {
         // Deleting in an empty line leaves it.
         Code::Backspace if prompt.line.text().is_empty() => return give_up(app, &prompt),
         _ => {
+            if prompt.purpose == Purpose::Side {
+                make_way(&mut prompt, key);
+            }
             if prompt.line.press(key) == Edit::Changed {
                 prompt.forget_completions();
                 prompt.problem.clear();
@@ -108,7 +111,24 @@ fn nudge(app: &App, prompt: &mut LinePrompt, up: bool) {
     let digits =
         if step > 0.0 { (1.0 - step.log10().floor()).clamp(0.0, 12.0) as usize } else { 2 };
     let text = format!("{} {value:.digits$}", side.relation.symbol());
-    *prompt = LinePrompt::new(Purpose::Side, &text);
+    *prompt = LinePrompt::offering(Purpose::Side, &text);
+}
+
+/// What a typed letter takes the place of: a relation stands only in front, so a second one begins
+/// anew, and a number replaces the one that was offered.
+fn make_way(prompt: &mut LinePrompt, key: Key) {
+    let offered = std::mem::take(&mut prompt.offered);
+    match key.code {
+        _ if key.control || key.alt => {}
+        Code::Char('<' | '>') => prompt.line = Line::new(""),
+        Code::Char('0'..='9' | '.' | '-' | '+') if offered => {
+            let text = prompt.line.text();
+            let relation = text.trim_start_matches(['<', '>', '=']).len();
+            let relation = text.get(..text.len() - relation).unwrap_or_default();
+            prompt.line = Line::new(&format!("{relation} "));
+        }
+        _ => {}
+    }
 }
 
 /// What a command's words can be completed from.

@@ -49,7 +49,7 @@ fn measured(label: &str, value: f64, unit: &str, bench: &Bench) -> EvidenceRow {
     }
     let shown = match unit {
         // To a hundredth: noise is larger in all but the best channels.
-        "K" => format!("{value:.2}"),
+        "K" => format!("{:.2}", if value.abs() < 0.005 { 0.0 } else { value }),
         _ => super::number(value),
     };
     fact(label, shown, unit)
@@ -219,7 +219,7 @@ fn problems(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
     let count = bench.review.granule().problems().len();
     if count > 0 {
         section(rows, "File");
-        let words = format!("{count} problems or guesses: !");
+        let words = format!("{count} found missing, guessed or odd: ! shows");
         rows.push(EvidenceRow::Words(words, Tone::Faint));
     }
     for note in &bench.layer.notes {

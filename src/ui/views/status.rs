@@ -24,6 +24,7 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
         facts.push((format!("{} no flag", counts.no_flag), Tone::Plain));
         facts.push((format!("{} not assessed", counts.not_assessed), Tone::Plain));
+        facts.push((record.state().granule.name().to_owned(), Tone::Plain));
     }
     if let Some(fact) = filling(bench) {
         facts.push(fact);
@@ -86,7 +87,7 @@ pub fn side_preview(app: &App) -> Option<String> {
         Some(side) => {
             let count = bench.side_selection(side).footprints.len();
             let all = bench.footprints();
-            format!("{count} of {all} footprints; Up Down Tab change it, Enter goes on")
+            format!("{count} of {all} footprints; Up Down change it, Tab turns it, Enter goes on")
         }
         None => "type < or > and a value".to_owned(),
     })

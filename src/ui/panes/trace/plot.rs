@@ -111,10 +111,11 @@ fn fitting(view: &TraceView<'_>) -> (f64, f64) {
     });
     let margin = 0.04 * (high - low);
     let range = (low - margin, high + margin);
-    if is_range(range) {
+    // Differences in the seventh digit are rounding and no shape: they would fill the plot.
+    if is_range(range) && high - low > 1e-6 * low.abs().max(high.abs()) {
         return range;
     }
-    // One value only, or none at all, or values too large to be spread out.
+    // Nearly one value only, or none at all, or values too large to be spread out.
     let middle = if low.is_finite() && low.abs() < 1e12 { low } else { 0.0 };
     let reach = if middle == 0.0 { 1.0 } else { 0.01 * middle.abs() };
     (middle - reach, middle + reach)
