@@ -43,8 +43,7 @@ fn standing(app: &mut App, entry: usize, found: Result<Standing, String>) -> Vec
         Ok(standing) => app.tray.set_standing(entry, standing),
         Err(why) => app.tray.set_error(entry, Some(why)),
     }
-    let waiting = matches!(app.table, Table::Empty);
-    if waiting { turning::open_first(app) } else { Vec::new() }
+    if app.searching { turning::open_first(app) } else { Vec::new() }
 }
 
 fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Vec<Job> {

@@ -77,6 +77,8 @@ pub struct App {
     pub tray_cursor: usize,
     /// The granule on the table.
     pub table: Table,
+    /// The first granule that is not signed off is still being looked for.
+    pub searching: bool,
     /// Records of granules left while their last decisions were still on the way to the disk.
     pub left: Vec<Record>,
     /// The pane that takes the keys.
@@ -123,6 +125,7 @@ impl App {
             tray,
             tray_cursor: 0,
             table: Table::Empty,
+            searching: false,
             left: Vec::new(),
             focus: Pane::Field,
             zoomed: None,

@@ -337,6 +337,18 @@ fn it_opens_at_the_first_granule_that_is_not_signed_off_and_steps_over_broken_fi
 }
 
 #[test]
+fn opening_can_be_given_up_for_another_granule() {
+    let names = ["lowen_001.nc", "pell_002.nc"];
+    let place = Place::with(&names);
+    append_byte(&place.path("pell_002.nc"));
+    let mut trial = place.review_held(&names);
+    trial.press("Esc");
+    trial.press("n");
+    trial.settle();
+    assert_eq!(trial.granule(), "pell_002.nc", "the answer for the first one is dropped");
+}
+
+#[test]
 fn without_any_granule_the_screen_says_so_and_leaves() {
     let place = Place::with(&[]);
     std::fs::write(place.path("broken.nc"), "no granule at all").unwrap();

@@ -26,11 +26,13 @@ pub fn start(app: &mut App) -> Vec<Job> {
 /// one; waits otherwise.
 pub fn open_first(app: &mut App) -> Vec<Job> {
     let mut first = None;
+    app.searching = false;
     for (number, entry) in app.tray.entries().iter().enumerate() {
         if entry.error.is_some() || entry.is_signed_off() {
             continue;
         }
         if entry.standing.is_none() {
+            app.searching = true;
             app.say("looking for the first granule that is not signed off…");
             return Vec::new();
         }
@@ -52,7 +54,9 @@ fn none_is_left(app: &mut App) -> Vec<Job> {
 
 /// Next, previous, next not signed off, or the one under the Tray's cursor.
 pub fn turn(app: &mut App, action: Action) -> Vec<Job> {
-    let here = app.current_entry();
+    // With nothing on the table, the Tray's own cursor tells where one is.
+    let on_table = app.current_entry();
+    let here = on_table.or_else(|| (!app.tray.is_empty()).then_some(app.tray_cursor));
     let (found, direction) = match action {
         Action::NextGranule => (app.tray.next(here), Direction::Forward),
         Action::PreviousGranule => {
@@ -63,7 +67,7 @@ pub fn turn(app: &mut App, action: Action) -> Vec<Job> {
         _ => (Some(app.tray_cursor), Direction::Forward),
     };
     match found {
-        Some(entry) if Some(entry) != here => open(app, entry, direction),
+        Some(entry) if Some(entry) != on_table => open(app, entry, direction),
         Some(_) => Vec::new(),
         None => {
             app.say(match action {
@@ -91,6 +95,13 @@ pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
     app.say(format!("opening {name}…"));
     jobs.push(Job::Open { request, path });
     jobs
+}
+
+/// Waits no longer for a granule to be opened; its answer will be dropped.
+pub fn give_up_opening(app: &mut App) {
+    app.table = Table::Empty;
+    app.focus = Pane::Tray;
+    app.say("opening given up; Enter opens what is chosen in the Tray");
 }
 
 /// A file that could not be opened is named in its row; the next one in the same direction is

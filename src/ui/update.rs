@@ -1,6 +1,6 @@
 //! What an event does to the state, and which jobs follow from it.
 
-use super::app::App;
+use super::app::{App, Table};
 use super::event::{Event, Input, Mouse};
 use super::jobs::Job;
 use super::key::{Code, Key};
@@ -124,12 +124,14 @@ fn focus(app: &mut App, forward: bool) -> Vec<Job> {
     Vec::new()
 }
 
-/// Esc lets go of one thing at a time: selection, zoomed pane, then the message.
+/// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, then the message.
 fn cancel(app: &mut App) -> Vec<Job> {
     let dropped = app.bench_mut().is_some_and(super::bench::Bench::drop_selection);
     if app.leaving {
         app.leaving = false;
         app.say("stays");
+    } else if matches!(app.table, Table::Opening { .. }) {
+        turning::give_up_opening(app);
     } else if !dropped && app.zoomed.take().is_none() {
         app.say("");
     }
