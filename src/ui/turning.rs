@@ -87,6 +87,7 @@ pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
     else {
         return Vec::new();
     };
+    app.searching = false;
     let mut jobs = keep_place(app);
     put_away(app);
     let request = app.request();
