@@ -145,7 +145,9 @@ fn files_in(folder: &Path) -> anyhow::Result<Vec<PathBuf>> {
         let ending = path.extension().map(OsStr::to_ascii_lowercase);
         let wanted = ending.is_some_and(|ending| ENDINGS.iter().any(|known| ending == *known));
         let hidden = path.file_name().is_some_and(|name| name.as_bytes().starts_with(b"."));
-        if wanted && !hidden && path.is_file() {
+        // A link to nowhere is left for the reader to name: a granule that is missing must not pass
+        // unseen.
+        if wanted && !hidden && !path.is_dir() {
             found.push(path);
         }
     }
@@ -213,6 +215,13 @@ mod tests {
         let folder = folder(&["g10.nc", "g2.nc", "g02b.NC", "notes.txt", ".hidden.nc", "in/g1.nc"]);
         let found = expanded(&[folder.path().to_owned()], "").unwrap();
         assert_eq!(found, ["g2.nc", "g02b.NC", "g10.nc"]);
+    }
+
+    #[test]
+    fn a_link_to_nowhere_in_a_folder_is_not_passed_over() {
+        let folder = folder(&["g1.nc"]);
+        std::os::unix::fs::symlink("/no/g2.nc", folder.path().join("g2.nc")).unwrap();
+        assert_eq!(expanded(&[folder.path().to_owned()], "").unwrap(), ["g1.nc", "g2.nc"]);
     }
 
     #[test]

@@ -79,7 +79,7 @@ impl Keeper {
 fn failure_message(error: &io::Error, folder: &std::path::Path) -> String {
     let advice = match error.kind() {
         io::ErrorKind::StorageFull | io::ErrorKind::QuotaExceeded => {
-            "free some space there, then try again"
+            "free some space, then try again"
         }
         io::ErrorKind::FileTooLarge => "raise the limit on file sizes, then try again",
         io::ErrorKind::PermissionDenied | io::ErrorKind::ReadOnlyFilesystem => {
@@ -88,8 +88,8 @@ fn failure_message(error: &io::Error, folder: &std::path::Path) -> String {
         _ => "see that the folder can be reached, then try again",
     };
     format!(
-        "not yet on the disk in {}: {error}. The decisions stay pending while the program runs: \
-         {advice}",
+        "{error}: decisions are not yet on the disk, and stay pending while the program runs: \
+         {advice}; folder {}",
         folder.display()
     )
 }

@@ -62,13 +62,20 @@ pub fn write_whole<E>(
         .suffix(".part")
         .permissions(Permissions::from_mode(0o666))
         .tempfile_in(folder)
-        .map_err(|source| WriteError::Create { folder: folder.to_owned(), source })?;
+        .map_err(|error| WriteError::Create { folder: folder.to_owned(), source: plain(error) })?;
     write(temporary.path()).map_err(|source| content_error(target, folder, source))?;
     let place = |source| WriteError::Place { target: target.to_owned(), source };
     // The writer may have made the file anew, so it is opened by name to be synced.
     File::open(temporary.path()).and_then(|file| file.sync_all()).map_err(place)?;
     temporary.persist(target).map_err(|error| place(error.error))?;
     sync_folder(folder).map_err(place)
+}
+
+/// The system's own words, without the temporary name that nobody chose.
+fn plain(error: io::Error) -> io::Error {
+    let inner = error.get_ref().and_then(|inner| inner.source());
+    let number = inner.and_then(|inner| inner.downcast_ref::<io::Error>()?.raw_os_error());
+    number.map_or(error, io::Error::from_raw_os_error)
 }
 
 fn folder_of(target: &Path) -> &Path {
@@ -126,6 +133,13 @@ mod tests {
         assert!(result.unwrap_err().to_string().contains("the writer gave up"));
         assert_eq!(std::fs::read(&target).unwrap(), b"before");
         assert_eq!(names(folder.path()), ["mask.nc"]);
+    }
+
+    #[test]
+    fn a_folder_that_is_not_there_is_told_without_the_temporary_name() {
+        let target = tempfile::tempdir().unwrap().path().join("gone/mask.nc");
+        let error = write_whole(&target, |_| Ok::<(), io::Error>(())).unwrap_err().to_string();
+        assert!(error.contains("gone") && !error.contains(".part"), "{error}");
     }
 
     #[test]

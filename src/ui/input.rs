@@ -74,8 +74,10 @@ impl InputParser {
         let waiting = std::mem::take(&mut self.waiting);
         match waiting.as_slice() {
             [0x1b] => vec![Input::Key(Key::plain(Code::Esc))],
-            [0x1b, b'['] => vec![Input::Key(Key { alt: true, ..Key::char('[') })],
-            [0x1b, b'O'] => vec![Input::Key(Key { alt: true, ..Key::char('O') })],
+            [0x1b, letter @ (b'[' | b'O')] => {
+                let keys = [Key::plain(Code::Esc), Key::char(char::from(*letter))];
+                keys.map(Input::Key).into()
+            }
             _ => Vec::new(),
         }
     }
@@ -146,15 +148,9 @@ fn after_escape(bytes: &[u8], rest: &[u8]) -> Step {
             Some(code) => Step::Event(Input::Key(Key::plain(code)), 3),
             None => Step::Nothing(3),
         },
-        // Two escapes: the first stands for itself, the second may start a sequence.
-        [0x1b, ..] => Step::Event(Input::Key(Key::plain(Code::Esc)), 1),
-        _ => match step(rest) {
-            Step::Event(Input::Key(key), used) => {
-                Step::Event(Input::Key(Key { alt: true, ..key }), used + 1)
-            }
-            Step::Unfinished => Step::Unfinished,
-            _ => Step::Nothing(2),
-        },
+        // No key has Alt, and a slow link puts Esc and the next key into one packet: they are two
+        // keys. Of two escapes, the second may start a sequence.
+        _ => Step::Event(Input::Key(Key::plain(Code::Esc)), 1),
     }
 }
 
@@ -280,7 +276,6 @@ mod tests {
             (b"\x1b[Z", "Shift-Tab"),
             (b"\x12", "Ctrl-R"),
             (b"\x1a", "Ctrl-Z"),
-            (b"\x1bx", "Alt-x"),
             (b"\r", "Enter"),
             (b"\x7f", "Backspace"),
             (b"\x1b[15~", "F5"),
@@ -289,6 +284,14 @@ mod tests {
         ] {
             assert_eq!(keys(bytes), [expected], "{bytes:?}");
         }
+    }
+
+    #[test]
+    fn a_key_that_comes_together_with_an_escape_is_a_key_of_its_own() {
+        assert_eq!(keys(b"\x1b:"), ["Esc", ":"]);
+        assert_eq!(keys(b"\x1b\x1b[A"), ["Esc", "Up"]);
+        assert_eq!(keys(b"\x1b\r"), ["Esc", "Enter"]);
+        assert_eq!(keys(b"\x1b["), ["Esc", "["]);
     }
 
     #[test]

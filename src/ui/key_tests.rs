@@ -187,8 +187,8 @@ fn signing_off_asks_about_the_rest() {
 fn setting_aside_needs_a_reason() {
     let (_place, mut trial) = one_granule();
     trial.keys("A Enter");
-    assert!(trial.message().contains("say why"));
-    trial.keys("A").types("half of it is missing").keys("Enter");
+    assert!(trial.message().contains("type some words"));
+    trial.types("half of it is missing").keys("Enter");
     assert_eq!(trial.record().state().granule, GranuleState::SetAside);
     assert!(trial.screen(80, 24).contains("set aside"));
 }

@@ -166,6 +166,11 @@ fn submit(app: &mut App, mut prompt: LinePrompt) -> Vec<Job> {
                 Vec::new()
             }
         },
+        Purpose::Aside | Purpose::Comment(_) if text.is_empty() => {
+            app.warn("type some words, or Esc to leave it");
+            app.overlay = Overlay::Line(prompt);
+            Vec::new()
+        }
         Purpose::Reason(order) => deciding::carry_out(app, order, words(&text)),
         Purpose::Aside => deciding::change(app, |record, now| {
             record.set_aside(&text, now).map(|()| "set aside".to_owned())
