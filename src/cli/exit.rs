@@ -39,6 +39,19 @@ pub fn of_error(error: &anyhow::Error) -> Exit {
     if error.downcast_ref::<UsageError>().is_some() { Exit::Usage } else { Exit::Failed }
 }
 
+/// An error with its causes, each said once: many of ours tell their cause already.
+pub fn words(error: &anyhow::Error) -> String {
+    let mut words = String::new();
+    for cause in error.chain().map(ToString::to_string) {
+        if cause.starts_with(&words) {
+            words = cause;
+        } else if !words.contains(&cause) {
+            words = format!("{words}: {cause}");
+        }
+    }
+    words
+}
+
 /// A reader of our output that has gone away (`| head`) ends the program silently.
 pub fn quiet_end(error: &anyhow::Error) -> Option<Exit> {
     let gone = error.chain().any(|cause| {
@@ -47,4 +60,19 @@ pub fn quiet_end(error: &anyhow::Error) -> Option<Exit> {
             .is_some_and(|error| error.kind() == std::io::ErrorKind::BrokenPipe)
     });
     gone.then_some(Exit::Done)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_cause_is_said_once() {
+        let error = anyhow::anyhow!("no space left")
+            .context("cannot write a.csv: no space left")
+            .context("lowen.nc");
+        assert_eq!(words(&error), "lowen.nc: cannot write a.csv: no space left");
+        let error = anyhow::anyhow!("lowen.nc: is empty").context("lowen.nc");
+        assert_eq!(words(&error), "lowen.nc: is empty");
+    }
 }

@@ -82,7 +82,7 @@ pub fn main() -> ExitCode {
             if let Some(broken_pipe) = exit::quiet_end(&error) {
                 return broken_pipe.into();
             }
-            eprintln!("radsieve: {error:#}");
+            eprintln!("radsieve: {}", exit::words(&error));
             exit::of_error(&error).into()
         }
     }

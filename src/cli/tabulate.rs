@@ -4,7 +4,7 @@ use std::io::{self, BufWriter, Write};
 use std::path::{Path, PathBuf};
 
 use super::Exit;
-use super::exit::UsageError;
+use super::exit::{self, UsageError};
 use super::inputs::{Inputs, Reading, reader_program};
 use super::table::{Form, Heading, write_rows};
 use crate::granule::{Granule, ProblemKind};
@@ -121,7 +121,7 @@ fn tabulate(plan: &Plan, out: &mut dyn Write) -> io::Result<Tally> {
             Ok(()) => tally.done += 1,
             Err(Failure::Output(error)) => return Err(error),
             Err(Failure::File(error)) => {
-                eprintln!("radsieve: {error:#}");
+                eprintln!("radsieve: {}", exit::words(&error));
                 tally.failed += 1;
                 let unknown = error.downcast_ref().is_some_and(LayerError::is_unknown_name);
                 tally.unknown_names += usize::from(unknown);
@@ -142,11 +142,12 @@ fn one_file(
     let refused = heading.as_ref().and_then(|heading| heading.refuses(&granule));
     // Each JSON line names its own dimensions.
     if let (Some(reason), Form::Csv) = (refused, plan.form) {
-        return Err(Failure::File(anyhow::anyhow!("{}: {reason}", granule.name())));
+        return Err(Failure::File(anyhow::anyhow!("{}: {reason}", shown(file))));
     }
-    let layers = layers(plan, &granule).map_err(Failure::File)?;
+    let layers =
+        layers(plan, &granule).map_err(|error| Failure::File(error.context(shown(file))))?;
     if !plan.quiet {
-        tell(&granule, &layers);
+        tell(&shown(file), &granule, &layers);
     }
     let name = file.to_string_lossy();
     let heading = match heading {
@@ -166,10 +167,15 @@ fn one_file(
         let columns = lacking.join(" and ");
         eprintln!(
             "radsieve: {}: its {columns} are left out, for the first file has none",
-            granule.name()
+            shown(file)
         );
     }
     write_rows(plan.form, heading, &name, &granule, &layers, out).map_err(Failure::Output)
+}
+
+/// The path as it was named: files of several folders may have one name.
+fn shown(file: &Path) -> String {
+    clean_text(&file.to_string_lossy())
 }
 
 /// Reads the bands that the layers need, and no others, and evaluates the layers.
@@ -183,13 +189,12 @@ fn layers(plan: &Plan, granule: &Granule) -> anyhow::Result<Vec<Layer>> {
     granule.fill_bands(bands, &Cancel::new(), &mut |_| {})?;
     evaluate_all(&expressions, &names)
         .into_iter()
-        .map(|layer| layer.map_err(|error| anyhow::Error::new(error).context(granule.name())))
+        .map(|layer| layer.map_err(anyhow::Error::new))
         .collect()
 }
 
 /// Says on standard error what was noticed: guesses about the file, notes on the layers.
-fn tell(granule: &Granule, layers: &[Layer]) {
-    let file = granule.name();
+fn tell(file: &str, granule: &Granule, layers: &[Layer]) {
     let noticed = granule.cube().notes();
     for problem in granule.problems().iter().chain(&noticed) {
         // What a file merely lacks matters here only where a layer asks for it.

@@ -73,9 +73,9 @@ pub fn write_whole<E>(
 
 /// The system's own words, without the temporary name that nobody chose.
 fn plain(error: io::Error) -> io::Error {
-    let inner = error.get_ref().and_then(|inner| inner.source());
-    let number = inner.and_then(|inner| inner.downcast_ref::<io::Error>()?.raw_os_error());
-    number.map_or(error, io::Error::from_raw_os_error)
+    let words = error.to_string();
+    let plain = words.split(" at path ").next().unwrap_or_default();
+    io::Error::new(error.kind(), plain)
 }
 
 fn folder_of(target: &Path) -> &Path {
