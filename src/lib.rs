@@ -19,6 +19,7 @@ pub mod netcdf_files;
 pub mod granule;
 pub mod layers;
 pub mod forward;
+pub mod screening;
 pub mod flags;
 pub mod export;
 pub mod synth;

@@ -10,12 +10,15 @@
 mod describe;
 mod exit;
 mod export;
+mod footprint_at;
 mod inputs;
 mod manual;
 mod natural_order;
 mod planck;
 mod reader;
 mod review;
+mod rules;
+mod screen;
 mod spectrum;
 mod surroundings;
 mod synth;
@@ -49,6 +52,10 @@ enum Command {
     Tabulate(tabulate::Arguments),
     /// One footprint's spectrum as CSV or JSON.
     Spectrum(spectrum::Arguments),
+    /// Run the screening tests over granules, write their decisions into ledgers.
+    Screen(screen::Arguments),
+    /// Print a rulebook with its sources, or find its mistakes.
+    Rules(rules::Arguments),
     /// Write CF flag masks or footprint lists from the ledgers.
     Export(export::Arguments),
     /// Convert radiance to brightness temperature and back, at the prompt.
@@ -94,6 +101,8 @@ fn run(command: Command) -> anyhow::Result<Exit> {
         Command::Describe(arguments) => describe::run(arguments),
         Command::Tabulate(arguments) => tabulate::run(arguments),
         Command::Spectrum(arguments) => spectrum::run(arguments),
+        Command::Screen(arguments) => screen::run(arguments),
+        Command::Rules(arguments) => rules::run(arguments),
         Command::Export(arguments) => export::run(arguments),
         Command::Planck(arguments) => planck::run(arguments),
         Command::Synth(arguments) => synth::run(arguments),

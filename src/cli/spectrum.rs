@@ -7,10 +7,10 @@ use serde::Serialize;
 use serde_json::{Map, Value};
 
 use super::Exit;
-use super::exit::UsageError;
+use super::footprint_at::{footprint, indices};
 use super::inputs::{Reading, reader_program};
 use super::table::{cell, present, stream_error};
-use crate::granule::{Band, FootprintGrid, Granule};
+use crate::granule::{Band, Granule};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
@@ -39,10 +39,10 @@ struct BandSpectrum {
 
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
-    let position = indices(&arguments.at)?;
+    let position = indices("--at", &arguments.at)?;
     let limits = arguments.reading.limits();
     let granule = Granule::open(&reader_program()?, &arguments.file, &limits)?;
-    let footprint = footprint(granule.footprints(), &position)?;
+    let footprint = footprint("--at", granule.footprints(), &position)?;
     let bands = bands(&granule, footprint)?;
     let mut out = BufWriter::new(io::stdout().lock());
     if arguments.json {
@@ -54,37 +54,6 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     }
     out.flush()?;
     Ok(Exit::Done)
-}
-
-fn indices(text: &str) -> Result<Vec<usize>, UsageError> {
-    let index = |part: &str| {
-        part.trim().parse::<usize>().map_err(|_| {
-            UsageError(format!(
-                "--at: {:?} is no index; give whole numbers from 0 with commas, as in 12,34",
-                part.trim()
-            ))
-        })
-    };
-    text.split(',').map(index).collect()
-}
-
-/// The footprint's number, or what the dimensions are.
-fn footprint(grid: &FootprintGrid, position: &[usize]) -> Result<usize, UsageError> {
-    grid.number(position).ok_or_else(|| {
-        let dimensions = grid.names().iter().zip(grid.lengths());
-        let ranges: Vec<String> = dimensions
-            .map(|(name, length)| match length.checked_sub(1) {
-                Some(last) => format!("{name} 0 to {last}"),
-                None => format!("{name} (empty)"),
-            })
-            .collect();
-        let typed: Vec<String> = position.iter().map(usize::to_string).collect();
-        UsageError(format!(
-            "--at: there is no footprint {}; the file has {}",
-            typed.join(","),
-            ranges.join(", ")
-        ))
-    })
 }
 
 fn bands(granule: &Granule, footprint: usize) -> anyhow::Result<Vec<BandSpectrum>> {

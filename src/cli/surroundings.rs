@@ -5,7 +5,6 @@ use std::env;
 use jiff::Timestamp;
 
 use super::exit::UsageError;
-#[cfg(feature = "terminal")]
 use crate::flags::Author;
 
 /// The campaign folder where none is named.
@@ -25,7 +24,6 @@ pub fn person() -> String {
 }
 
 /// Who writes ledgers, from where.
-#[cfg(feature = "terminal")]
 pub fn author() -> Author {
     let host = rustix::system::uname().nodename().to_string_lossy().into_owned();
     Author { person: person(), host, process: std::process::id() }

@@ -1,6 +1,6 @@
 //! Expressions for a first look at a granule, and what a command line may offer.
 
-use super::syntax::{FRIENDLY_NAMES, functions};
+use super::syntax::{DERIVED_NAMES, FRIENDLY_NAMES, functions};
 
 /// Expression and short label of what is shown for a footprint at first: window temperatures and
 /// the differences that tell cloud, dust and ozone. Wavenumbers are those of clean windows in
@@ -21,7 +21,7 @@ pub fn suggestions() -> impl Iterator<Item = &'static str> {
     FIRST_LOOK
         .iter()
         .map(|(expression, _)| *expression)
-        .chain(FRIENDLY_NAMES.iter().map(|field| field.name))
+        .chain(FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name))
         .chain(functions().map(|(_, example)| example))
 }
 

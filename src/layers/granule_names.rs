@@ -4,9 +4,10 @@ use std::collections::BTreeMap;
 use std::ops::Range;
 use std::sync::OnceLock;
 
+use super::derived::derive;
 use super::names::{NameError, Names, Values};
 use super::neighbours::Neighbours;
-use super::syntax::{Expression, FRIENDLY_NAMES};
+use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES};
 use super::unit::LayerUnit;
 use crate::granule::{Channel, Cube, Granule, Quantity};
 use crate::spectral::planck;
@@ -44,19 +45,7 @@ impl<'g> GranuleNames<'g> {
     }
 
     fn field(&self, name: &str) -> Option<&[f64]> {
-        let fields = self.granule.geolocation();
-        let values = match name {
-            "lat" => &fields.latitude,
-            "lon" => &fields.longitude,
-            "view_zenith" => &fields.view_zenith,
-            "view_azimuth" => &fields.view_azimuth,
-            "solar_zenith" => &fields.solar_zenith,
-            "solar_azimuth" => &fields.solar_azimuth,
-            "land" => &fields.land_fraction,
-            "time" => &fields.time,
-            _ => return None,
-        };
-        values.as_deref()
+        self.granule.geolocation().field(name)
     }
 
     /// The index of each footprint along a dimension.
@@ -69,7 +58,8 @@ impl<'g> GranuleNames<'g> {
     }
 
     fn known_names(&self) -> Vec<String> {
-        let friendly = FRIENDLY_NAMES.iter().map(|field| field.name.to_owned());
+        let fields = FRIENDLY_NAMES.iter().chain(DERIVED_NAMES);
+        let friendly = fields.map(|field| field.name.to_owned());
         let defined = self.definitions.into_iter().flat_map(|all| all.keys().cloned());
         let dimensions = self.granule.footprints().names().iter().cloned();
         let variables =
@@ -145,6 +135,11 @@ impl Names for GranuleNames<'_> {
                 Some(values) => Ok(Values { values: values.to_vec(), unit: friendly.unit }),
                 None => Err(NameError::NotInFile(format!("{name} ({})", friendly.meaning))),
             };
+        }
+        if let Some(derived) = DERIVED_NAMES.iter().find(|derived| derived.name == name) {
+            let values = derive(name, &|field| self.field(field))
+                .map_err(|needed| NameError::NotInFile(format!("{needed}, which {name} needs")))?;
+            return Ok(Values { values, unit: derived.unit });
         }
         let dimensions = self.granule.footprints().names();
         match dimensions.iter().position(|dimension| dimension == name) {

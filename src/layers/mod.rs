@@ -4,6 +4,7 @@
 //!
 //! **Never** decides anything.
 
+mod derived;
 mod evaluation;
 mod first_look;
 mod granule_names;
@@ -19,7 +20,11 @@ pub use granule_names::GranuleNames;
 pub use names::{NameError, Names, Values};
 pub use neighbours::Neighbours;
 pub use syntax::{
-    Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions, near_names,
+    DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions,
+    near_names,
 };
 pub use unit::LayerUnit;
 pub use value_range::ValueRange;
+
+#[cfg(test)]
+pub(crate) use evaluation::FakeNames;

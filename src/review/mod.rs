@@ -1,11 +1,13 @@
 //! One granule on the table: open, look, decide, withdraw, sign off.
 //!
-//! Uses: `system`, `units`, `spectral`, `netcdf_files`, `granule`, `layers`, `flags`, `export`.
+//! Uses: `system`, `units`, `spectral`, `netcdf_files`, `granule`, `layers`, `screening`, `flags`,
+//! `export`.
 //!
 //! **Never** draws or prints.
 
 mod exporting;
 mod record;
+mod tests_decide;
 #[allow(clippy::module_inception)] // The room is named after the thing.
 mod review;
 mod spectrum;
@@ -16,4 +18,5 @@ pub use exporting::ExportedBy;
 pub use record::Record;
 pub use review::Review;
 pub use spectrum::{BandSpectrum, Spectrum};
+pub use tests_decide::{Recorded, test_acts};
 pub use verbs::Refusal;

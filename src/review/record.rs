@@ -66,7 +66,19 @@ impl Record {
         self.fold();
     }
 
-    fn fold(&mut self) {
+    /// Decides as a test, by its name; the caller folds when all is said.
+    pub(super) fn decide_as_test(
+        &mut self,
+        test: &str,
+        act: Act,
+        why: Option<String>,
+        now: Timestamp,
+    ) {
+        let decision = self.writer.append(Origin::Test(test.to_owned()), act, why, now);
+        self.decisions.push(decision);
+    }
+
+    pub(super) fn fold(&mut self) {
         self.state = FlagState::replay(self.footprints, &self.decisions, &self.vocabulary);
         self.counts = self.state.counts(&self.vocabulary);
     }

@@ -8,6 +8,8 @@ use crate::flags::GranuleIdentity;
 use crate::granule::{Cube, Granule, GranuleError};
 use crate::layers::{Expression, GranuleNames, Layer, Mistake, Neighbours, evaluate_all};
 use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::screening::{Rulebook, Screened, channels_of, screen};
+use crate::system::Cancel;
 
 /// A granule on the table. Many threads may look at it at once.
 #[derive(Debug)]
@@ -49,6 +51,22 @@ impl Review {
     /// Its names for layer expressions.
     pub fn names(&self) -> GranuleNames<'_> {
         GranuleNames::new(&self.granule, &self.cube).keeping_neighbours(&self.neighbours)
+    }
+
+    /// Runs the tests of a rulebook over what has been read so far.
+    pub fn screen<'r>(&self, rulebook: &'r Rulebook) -> Screened<'r> {
+        screen(rulebook, &self.names())
+    }
+
+    /// Reads the bands that a rulebook needs, and no others.
+    ///
+    /// # Errors
+    /// The file can't be read.
+    pub fn read_for(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<(), GranuleError> {
+        let channels = channels_of(rulebook, &self.names());
+        let mut bands: Vec<usize> = channels.iter().map(|channel| channel.band).collect();
+        bands.dedup();
+        self.granule.fill_bands(bands, cancel, &mut |_| {})
     }
 
     /// Evaluates an expression over what has been read so far.

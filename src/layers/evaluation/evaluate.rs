@@ -82,6 +82,7 @@ impl Work {
             unit: output.unit,
             values: self.column(output.source).to_vec(),
             channels: single_channels(&plan.leaves, output),
+            not_positive: not_positive(&self.leaves, output),
             notes: notes(&plan.leaves, &self.leaves, output, names),
         }
     }
@@ -106,6 +107,15 @@ fn single_channels(leaves: &[Leaf], output: &Output) -> Vec<Channel> {
     channels
 }
 
+/// Footprints at which one of the expression's radiances has no temperature.
+fn not_positive(columns: &[Column], output: &Output) -> Vec<usize> {
+    let mut footprints: Vec<usize> =
+        output.leaves.iter().flat_map(|at| columns[*at].not_positive.iter().copied()).collect();
+    footprints.sort_unstable();
+    footprints.dedup();
+    footprints
+}
+
 fn notes(leaves: &[Leaf], columns: &[Column], output: &Output, names: &dyn Names) -> Vec<String> {
     let mut notes: Vec<String> = Vec::new();
     let used = || output.leaves.iter().map(|at| (&leaves[*at], &columns[*at]));
@@ -113,11 +123,11 @@ fn notes(leaves: &[Leaf], columns: &[Column], output: &Output, names: &dyn Names
     let footprints = names.footprints();
     for (leaf, column) in used() {
         let place = place(leaf);
-        if column.not_positive > 0 {
+        if !column.not_positive.is_empty() {
             notes.push(format!(
                 "at {place} {} of {footprints} footprints have a radiance of zero or less, which \
                  has no brightness temperature",
-                column.not_positive
+                column.not_positive.len()
             ));
         }
         if column.partial > 0 {

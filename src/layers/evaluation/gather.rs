@@ -21,8 +21,8 @@ const PARALLEL_FROM: usize = 1 << 20;
 pub struct Column {
     /// One number per footprint.
     pub values: Vec<f64>,
-    /// Footprints whose radiance is zero or less, so that it has no temperature.
-    pub not_positive: usize,
+    /// Footprints whose radiance is zero or less, so that it has no temperature, in their order.
+    pub not_positive: Vec<usize>,
     /// Footprints for which some of an interval's channels were missing.
     pub partial: usize,
 }
@@ -30,7 +30,7 @@ pub struct Column {
 impl Column {
     fn append(&mut self, block: &Self) {
         self.values.extend_from_slice(&block.values);
-        self.not_positive += block.not_positive;
+        self.not_positive.extend_from_slice(&block.not_positive);
         self.partial += block.partial;
     }
 }
@@ -66,6 +66,8 @@ struct Wanted {
 /// The numbers of one block.
 struct Block<'w> {
     wanted: &'w Wanted,
+    /// Number of the first footprint.
+    start: usize,
     length: usize,
     radiances: Vec<f64>,
     temperatures: Vec<f64>,
@@ -95,7 +97,8 @@ impl Wanted {
         if !temperatures.is_empty() {
             names.temperatures(&self.temperatures, footprints.clone(), &mut temperatures);
         }
-        let block = Block { wanted: self, length, radiances, temperatures };
+        let block =
+            Block { wanted: self, start: footprints.start, length, radiances, temperatures };
         leaves.iter().map(|leaf| block.column(leaf, &footprints)).collect()
     }
 }
@@ -123,6 +126,12 @@ impl Block<'_> {
                 values.resize(self.length, f64::NAN);
                 Column { values, ..Column::default() }
             }
+            Leaf::Channel(Quantity::MissingShare, channel) => {
+                self.missing_share(std::slice::from_ref(channel))
+            }
+            Leaf::Interval { quantity: Quantity::MissingShare, channels, .. } => {
+                self.missing_share(channels)
+            }
             Leaf::Channel(quantity, channel) => self.channel(*quantity, channel),
             Leaf::Interval { quantity, channels, .. } => self.interval(*quantity, channels),
         }
@@ -136,10 +145,23 @@ impl Block<'_> {
         }
         let radiances = part(&self.wanted.radiances, &self.radiances, channel).unwrap_or_default();
         let mut column = Column::default();
-        for radiance in radiances {
-            column.push(quantity, channel.wavenumber, *radiance);
+        for (footprint, radiance) in (self.start..).zip(radiances) {
+            column.push(quantity, footprint, channel.wavenumber, *radiance);
         }
         column
+    }
+
+    /// Share of the channels that have no value.
+    fn missing_share(&self, channels: &[Channel]) -> Column {
+        let mut missing = vec![0_usize; self.length];
+        for channel in channels {
+            let radiances = part(&self.wanted.radiances, &self.radiances, channel);
+            for (count, radiance) in missing.iter_mut().zip(radiances.unwrap_or_default()) {
+                *count += usize::from(!radiance.is_finite());
+            }
+        }
+        let share = |count: usize| count as f64 / channels.len() as f64;
+        Column { values: missing.into_iter().map(share).collect(), ..Column::default() }
     }
 
     /// Radiances are averaged, negative ones included, for averages of temperatures are biased;
@@ -169,20 +191,24 @@ impl Block<'_> {
             }
             column.partial += usize::from(count < channels.len());
             let count = count as f64;
-            column.push(quantity, wavenumbers / count, radiances / count);
+            let footprint = self.start + footprint;
+            column.push(quantity, footprint, wavenumbers / count, radiances / count);
         }
         column
     }
 }
 
 impl Column {
-    fn push(&mut self, quantity: Quantity, wavenumber: f64, radiance: f64) {
+    fn push(&mut self, quantity: Quantity, footprint: usize, wavenumber: f64, radiance: f64) {
         let value = match quantity {
             Quantity::Radiance => radiance,
+            Quantity::MissingShare => f64::NAN,
             Quantity::BrightnessTemperature => match brightness_temperature(wavenumber, radiance) {
                 Ok(temperature) => temperature,
                 Err(error) => {
-                    self.not_positive += usize::from(error == NoTemperature::NotPositive);
+                    if error == NoTemperature::NotPositive {
+                        self.not_positive.push(footprint);
+                    }
                     f64::NAN
                 }
             },

@@ -14,6 +14,9 @@ pub struct Layer {
     pub values: Vec<f64>,
     /// The channels that `bt` and `rad` of one place took, in the order of the text.
     pub channels: Vec<Channel>,
+    /// Footprints, in their order, at which a radiance that the expression uses itself is zero or
+    /// less and so has no brightness temperature.
+    pub not_positive: Vec<usize>,
     /// What a reader of the numbers should know.
     pub notes: Vec<String>,
 }

@@ -48,10 +48,14 @@ impl Leaf {
     /// A note that needs no numbers.
     pub fn note(&self) -> Option<String> {
         match self {
-            Self::Interval { width, .. } if *width > WIDE => Some(format!(
-                "an interval {width} cm-1 wide is averaged; beyond {WIDE} cm-1 one temperature \
+            Self::Interval { quantity, width, .. }
+                if *width > WIDE && *quantity != Quantity::MissingShare =>
+            {
+                Some(format!(
+                    "an interval {width} cm-1 wide is averaged; beyond {WIDE} cm-1 one temperature \
                  hardly stands for all of its channels"
-            )),
+                ))
+            }
             _ => None,
         }
     }

@@ -17,3 +17,6 @@ mod fake_names;
 pub use error::LayerError;
 pub use evaluate::{channels_needed, evaluate, evaluate_all};
 pub use layer::Layer;
+
+#[cfg(test)]
+pub use fake_names::FakeNames;

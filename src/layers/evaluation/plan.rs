@@ -258,6 +258,7 @@ impl<'n> Planner<'n> {
         Ok(match quantity {
             Quantity::BrightnessTemperature => LayerUnit::Kelvin,
             Quantity::Radiance => LayerUnit::Radiance,
+            Quantity::MissingShare => LayerUnit::One,
         })
     }
 

@@ -18,4 +18,4 @@ pub use expression::{Expression, ExpressionError};
 pub use mistake::Mistake;
 pub use near_names::near_names;
 pub use tree::{Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where};
-pub use vocabulary::{FRIENDLY_NAMES, FriendlyName, functions};
+pub use vocabulary::{DERIVED_NAMES, FRIENDLY_NAMES, FriendlyName, functions};

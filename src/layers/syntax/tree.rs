@@ -71,6 +71,8 @@ pub enum Quantity {
     BrightnessTemperature,
     /// Radiance, mW m-2 sr-1 (cm-1)-1.
     Radiance,
+    /// Share of the channels that have no value, 0 to 1.
+    MissingShare,
 }
 
 /// Where in the spectrum.

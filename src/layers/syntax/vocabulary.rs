@@ -46,6 +46,35 @@ pub const FRIENDLY_NAMES: &[FriendlyName] = &[
     },
 ];
 
+/// What is worked out from the geolocation fields, under the same names in every file.
+pub const DERIVED_NAMES: &[FriendlyName] = &[
+    FriendlyName {
+        name: "day",
+        unit: LayerUnit::Truth,
+        meaning: "1 where the sun's zenith angle is below 85 degrees",
+    },
+    FriendlyName {
+        name: "twilight",
+        unit: LayerUnit::Truth,
+        meaning: "1 where the sun's zenith angle is 85 to 90 degrees",
+    },
+    FriendlyName {
+        name: "night",
+        unit: LayerUnit::Truth,
+        meaning: "1 where the sun's zenith angle is above 90 degrees",
+    },
+    FriendlyName {
+        name: "glint_angle",
+        unit: LayerUnit::Degree,
+        meaning: "angle between the view and the sun's mirror image, degrees",
+    },
+    FriendlyName {
+        name: "day_of_year",
+        unit: LayerUnit::One,
+        meaning: "days since the year began, 0 to 366, UTC",
+    },
+];
+
 /// What a name followed by a parenthesis stands for.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Callable {
@@ -74,6 +103,7 @@ pub enum Arity {
 const CALLABLE: &[(&str, Callable, &str)] = &[
     ("bt", Callable::Spectral(Quantity::BrightnessTemperature), "bt(900)"),
     ("rad", Callable::Spectral(Quantity::Radiance), "rad(667.5)"),
+    ("share_missing", Callable::Spectral(Quantity::MissingShare), "share_missing(650..2760)"),
     ("planck", Callable::Planck, "planck(280, 900)"),
     ("var", Callable::Variable, "var(\"name in the file\")"),
     ("min", Callable::Function(Function::Min, Arity::TwoOrMore), "min(a, b)"),

@@ -1,0 +1,340 @@
+//! `radsieve screen`: the screening tests over granules, their decisions into ledgers.
+
+use std::io::Write;
+use std::path::{Path, PathBuf};
+use std::time::Duration;
+
+use anyhow::Context;
+use jiff::Timestamp;
+use serde_json::{Value, json};
+
+use super::exit::UsageError;
+use super::footprint_at::{footprint, indices};
+use super::inputs::{Inputs, Reading, reader_program};
+use super::rules::rulebook_or_builtin;
+use super::{Exit, surroundings};
+use crate::flags::{Author, Campaign};
+use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::review::{Record, Recorded, Review};
+use crate::screening::{Evidence, Rulebook, Screened, Summary, TestEvidence, Verdict};
+use crate::system::{Cancel, clean_text};
+
+/// How long to wait for a slow disk before the decisions count as lost.
+const PATIENCE: Duration = Duration::from_secs(60);
+
+/// What was typed.
+#[derive(Debug, clap::Args)]
+#[command(after_help = "Examples:\n  \
+    radsieve screen *.nc --campaign spring\n  \
+    radsieve screen granule.nc --explain 12,34,5\n\n\
+    A repeated run replaces what the same rulebook decided before; a person's word stands. Nothing \
+    is clear by default: a footprint that no test could look at stays not assessed.\n\n\
+    RADSIEVE_PERSON names who starts the tests; RADSIEVE_NOW stops the clock.")]
+pub struct Arguments {
+    #[command(flatten)]
+    inputs: Inputs,
+    #[command(flatten)]
+    reading: Reading,
+    /// The rulebook; the built-in one where none is named.
+    #[arg(long, value_name = "FILE")]
+    rules: Option<PathBuf>,
+    /// The campaign folder with the ledgers; made if it is not there.
+    #[arg(long, value_name = "DIR", default_value = surroundings::DEFAULT_CAMPAIGN)]
+    campaign: PathBuf,
+    /// Screen, but write no decisions.
+    #[arg(long)]
+    dry_run: bool,
+    /// Show one footprint's evidence, and write no decisions: its zero-based index along each
+    /// footprint dimension, as in 12,34 or 12,34,5.
+    #[arg(long, value_name = "INDICES", allow_hyphen_values = true)]
+    explain: Option<String>,
+    /// JSON in place of text.
+    #[arg(long)]
+    json: bool,
+}
+
+/// Where decisions go; `None` where none are written.
+struct Desk {
+    campaign: Campaign,
+    author: Author,
+    now: Timestamp,
+}
+
+/// What came of a file.
+struct Outcome<'r> {
+    screened: Screened<'r>,
+    recorded: Option<Recorded>,
+}
+
+/// Runs the command.
+pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    let files = arguments.inputs.files()?;
+    let rulebook = rulebook_or_builtin(arguments.rules.as_deref())?;
+    let program = reader_program()?;
+    let limits = arguments.reading.limits();
+    if let Some(position) = &arguments.explain {
+        let position = indices("--explain", position)?;
+        let [file] = &files[..] else {
+            return Err(UsageError("--explain takes one file".into()).into());
+        };
+        return explain(&program, file, &limits, &rulebook, &position, arguments.json);
+    }
+    let desk = if arguments.dry_run { None } else { Some(desk(&arguments, &rulebook)?) };
+    let mut failed = 0;
+    let mut entries = Vec::new();
+    for file in &files {
+        let outcome = one_file(&program, file, &limits, &rulebook, desk.as_ref());
+        failed += usize::from(outcome.is_err());
+        tell(file, &outcome, arguments.json)?;
+        if arguments.json {
+            entries.push(entry(file, &outcome));
+        }
+    }
+    if arguments.json {
+        let answer = json!({ "schema": 1, "rulebook": head(&rulebook), "files": entries });
+        writeln!(std::io::stdout(), "{answer}")?;
+    }
+    Ok(match failed {
+        0 => Exit::Done,
+        failed if failed < files.len() => Exit::SomeFailed,
+        _ => Exit::Failed,
+    })
+}
+
+fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {
+    let now = surroundings::now()?;
+    let campaign = Campaign::open_or_create(&arguments.campaign)?;
+    for problem in &campaign.settings().problems {
+        eprintln!("radsieve: {}", clean_text(problem));
+    }
+    let vocabulary = &campaign.settings().vocabulary;
+    for flag in rulebook.flags() {
+        if vocabulary.by_name(flag).is_none() {
+            let known: Vec<&str> =
+                vocabulary.kinds().iter().map(|kind| kind.name.as_str()).collect();
+            let message = format!(
+                "the rulebook sets the flag {}, which the campaign does not have; it has {}",
+                clean_text(flag),
+                known.join(", ")
+            );
+            return Err(UsageError(message).into());
+        }
+    }
+    Ok(Desk { campaign, author: surroundings::author(), now })
+}
+
+fn one_file<'r>(
+    program: &ReaderProgram,
+    file: &Path,
+    limits: &ReadLimits,
+    rulebook: &'r Rulebook,
+    desk: Option<&Desk>,
+) -> anyhow::Result<Outcome<'r>> {
+    let review = Review::open(program, file, limits)?;
+    review.read_for(rulebook, &Cancel::new())?;
+    let screened = review.screen(rulebook);
+    let recorded = match desk {
+        None => None,
+        Some(desk) => Some(record(desk, &review, &screened)?),
+    };
+    Ok(Outcome { screened, recorded })
+}
+
+fn record(desk: &Desk, review: &Review, screened: &Screened<'_>) -> anyhow::Result<Recorded> {
+    let version = concat!("radsieve ", env!("CARGO_PKG_VERSION"));
+    let identity = review.identify()?;
+    let mut record = Record::open(&desk.campaign, identity, &desk.author, version, desk.now)?;
+    for problem in record.problems() {
+        eprintln!("radsieve: {}", clean_text(problem));
+    }
+    let recorded = record.tests_decide(screened, desk.now)?;
+    record.close(PATIENCE).with_context(|| review.granule().name())?;
+    Ok(recorded)
+}
+
+/// One line about each file on standard output; what went wrong on standard error.
+fn tell(file: &Path, outcome: &anyhow::Result<Outcome<'_>>, json: bool) -> std::io::Result<()> {
+    let file = clean_text(&file.display().to_string());
+    match outcome {
+        Ok(outcome) => {
+            for other in outcome.recorded.iter().flat_map(|recorded| &recorded.others) {
+                let other = clean_text(other);
+                eprintln!("radsieve: {file}: decisions of the rulebook {other} stand as well");
+            }
+            if !json {
+                writeln!(std::io::stdout(), "{file}: {}", line(&outcome.screened.summary()))?;
+            }
+        }
+        Err(error) => {
+            let words = format!("{error:#}");
+            let named = words.contains(&file);
+            let words = clean_text(&words);
+            eprintln!("radsieve: {}", if named { words } else { format!("{file}: {words}") });
+        }
+    }
+    Ok(())
+}
+
+fn line(summary: &Summary) -> String {
+    let percent = |count: usize| format!("{:.1} %", percent(count, summary.footprints));
+    let mut parts: Vec<String> = summary
+        .flagged
+        .iter()
+        .filter(|(_, count)| *count > 0)
+        .map(|(flag, count)| format!("{flag} {}", percent(*count)))
+        .collect();
+    parts.push(format!("no flag {}", percent(summary.no_flag)));
+    parts.push(format!("not assessed {}", percent(summary.not_assessed)));
+    if summary.mean_doubt.is_finite() {
+        parts.push(format!("mean doubt {:.2}", summary.mean_doubt));
+    }
+    format!("{} footprints: {}", summary.footprints, parts.join(", "))
+}
+
+fn percent(count: usize, all: usize) -> f64 {
+    if all == 0 { 0.0 } else { 100.0 * count as f64 / all as f64 }
+}
+
+fn head(rulebook: &Rulebook) -> Value {
+    json!({
+        "name": rulebook.name,
+        "fingerprint": rulebook.fingerprint,
+        "calibration": rulebook.calibration,
+    })
+}
+
+fn entry(file: &Path, outcome: &anyhow::Result<Outcome<'_>>) -> Value {
+    let file = file.display().to_string();
+    let outcome = match outcome {
+        Ok(outcome) => outcome,
+        Err(error) => return json!({ "file": file, "error": format!("{error:#}") }),
+    };
+    let summary = outcome.screened.summary();
+    let flagged: serde_json::Map<String, Value> =
+        summary.flagged.iter().map(|(flag, count)| (flag.clone(), json!(count))).collect();
+    json!({
+        "file": file,
+        "footprints": summary.footprints,
+        "flagged": flagged,
+        "no_flag": summary.no_flag,
+        "not_assessed": summary.not_assessed,
+        "mean_doubt": summary.mean_doubt.is_finite().then_some(summary.mean_doubt),
+        "tests": tests(&outcome.screened),
+        "decisions": outcome.recorded.as_ref().map(|recorded| json!({
+            "written": recorded.written,
+            "replaced": recorded.replaced,
+            "unchanged": recorded.unchanged,
+        })),
+    })
+}
+
+/// How often each test spoke, and why it could not.
+fn tests(screened: &Screened<'_>) -> Vec<Value> {
+    let tests = screened.rulebook.tests.iter().zip(&screened.tests);
+    tests
+        .map(|(test, result)| {
+            let count = |wanted: Verdict| {
+                result.verdicts.iter().filter(|verdict| **verdict == wanted).count()
+            };
+            json!({
+                "name": test.name,
+                "for": count(Verdict::For),
+                "against": count(Verdict::Against),
+                "other_surface": count(Verdict::OtherSurface),
+                "guarded": count(Verdict::Guarded) + count(Verdict::GuardUnknown),
+                "missing": count(Verdict::Missing) + count(Verdict::NotPositive),
+                "not_in_file": (!result.lacks.is_empty()).then_some(&result.lacks),
+                "substitute": result.way.filter(|way| *way > 0),
+            })
+        })
+        .collect()
+}
+
+fn explain(
+    program: &ReaderProgram,
+    file: &Path,
+    limits: &ReadLimits,
+    rulebook: &Rulebook,
+    position: &[usize],
+    json: bool,
+) -> anyhow::Result<Exit> {
+    let review = Review::open(program, file, limits)?;
+    let number = footprint("--explain", review.granule().footprints(), position)?;
+    review.read_for(rulebook, &Cancel::new())?;
+    let screened = review.screen(rulebook);
+    let evidence = screened.evidence(number).context("the footprint is gone")?;
+    let mut out = std::io::stdout().lock();
+    if json {
+        let names = review.granule().footprints().names().iter().cloned();
+        let position: serde_json::Map<String, Value> =
+            names.zip(position.iter().map(|index| Value::from(*index))).collect();
+        let answer = json!({
+            "file": file.display().to_string(),
+            "position": position,
+            "rulebook": head(rulebook),
+            "evidence": evidence,
+        });
+        writeln!(out, "{answer}")?;
+    } else {
+        write_evidence(&evidence, rulebook, &mut out)?;
+    }
+    Ok(Exit::Done)
+}
+
+fn write_evidence(
+    evidence: &Evidence,
+    rulebook: &Rulebook,
+    out: &mut dyn Write,
+) -> std::io::Result<()> {
+    let surface = evidence.surface.as_deref().unwrap_or("none that the rulebook knows");
+    writeln!(out, "surface {surface}; rulebook {} ({})", rulebook.name, rulebook.fingerprint)?;
+    let assessed = if evidence.assessed { "assessed" } else { "not assessed" };
+    writeln!(out, "{assessed}, doubt {:.2}", evidence.doubt)?;
+    writeln!(out, "weights: {}", rulebook.calibration)?;
+    for flag in &evidence.flags {
+        let set = if flag.set { "set" } else { "not set" };
+        match flag.probability {
+            None => writeln!(out, "\n{}: no test could speak", flag.flag)?,
+            Some(probability) => writeln!(
+                out,
+                "\n{}: {set}; probability {probability:.3}, coverage {:.2}, doubt {:.2}",
+                flag.flag, flag.coverage, flag.doubt
+            )?,
+        }
+        for family in &flag.families {
+            let tests = evidence.tests.iter().filter(|test| {
+                (test.flag.as_str(), test.family.as_str()) == (&flag.flag, &family.family)
+                    && test.verdict != Verdict::OtherSurface
+            });
+            let voice = family
+                .log_odds
+                .map_or("silent".to_owned(), |voice| format!("{voice:+.2} x {:.2}", family.weight));
+            writeln!(out, "  {} {voice}", family.family)?;
+            for test in tests {
+                write_test(test, out)?;
+            }
+        }
+    }
+    Ok(())
+}
+
+fn write_test(test: &TestEvidence, out: &mut dyn Write) -> std::io::Result<()> {
+    let number = |value: Option<f64>| value.map_or("missing".to_owned(), |v| format!("{v:.3}"));
+    let symbol = if test.sense == "above" { ">" } else { "<" };
+    let said = match (test.verdict, test.margin) {
+        (Verdict::For, Some(margin)) => format!("for, margin {margin:+.2}"),
+        (Verdict::Against, Some(margin)) => format!("against, margin {margin:+.2}"),
+        _ => "not applicable".to_owned(),
+    };
+    let half = if test.halved { ", halved" } else { "" };
+    let (value, threshold) = (number(test.value), number(test.threshold));
+    writeln!(out, "    {}: {said}{half}", test.name)?;
+    writeln!(out, "      {} = {value} {symbol} {threshold}?", test.expression)?;
+    if !test.reason.is_empty() {
+        writeln!(out, "      {}", test.reason)?;
+    }
+    if test.verdict.is_result() {
+        writeln!(out, "      source: {}", test.source)?;
+    }
+    Ok(())
+}

@@ -1,0 +1,116 @@
+//! The tests' decisions, written into the ledger as the tests', never as a person's.
+
+use jiff::Timestamp;
+
+use super::{Record, Refusal};
+use crate::flags::{Act, Decision, DecisionId, FootprintSet, Origin, Scope, standing};
+use crate::screening::Screened;
+
+/// What was written down.
+#[derive(Debug, Clone, Default, PartialEq, Eq)]
+pub struct Recorded {
+    /// New decisions.
+    pub written: usize,
+    /// Decisions of the same rulebook that were taken back.
+    pub replaced: usize,
+    /// Whether the ledger said all of it already.
+    pub unchanged: bool,
+    /// Other rulebooks whose decisions stand as well.
+    pub others: Vec<String>,
+}
+
+/// What the tests decide about a granule, each with its reason.
+pub fn test_acts(screened: &Screened<'_>) -> Vec<(Act, Option<String>)> {
+    let all = || 0..screened.footprints();
+    let mut acts = Vec::new();
+    for flag in &screened.flags {
+        let footprints: FootprintSet = all().filter(|at| flag.is_set(*at)).collect();
+        let speakers = screened.speakers(flag);
+        let words = speakers.iter().map(|(test, count)| format!("{test} ({count})"));
+        let why = words.collect::<Vec<_>>().join(", ");
+        acts.push((flag_act(&flag.flag, footprints), Some(why)));
+    }
+    let doubtful: FootprintSet = all().filter(|at| screened.is_doubtful(*at)).collect();
+    let why = format!("doubt {} or more", screened.rulebook.doubt_cut);
+    acts.push((flag_act("doubtful", doubtful), Some(why)));
+    let assessed = all().filter(|at| screened.assessed[*at]).collect();
+    let rulebook = screened.rulebook;
+    let why = format!("rulebook {} ({})", rulebook.name, rulebook.fingerprint);
+    acts.push((Act::Assess { footprints: assessed }, Some(why)));
+    acts.retain(|(act, _)| act.footprints().is_some_and(|footprints| !footprints.is_empty()));
+    acts
+}
+
+fn flag_act(flag: &str, footprints: FootprintSet) -> Act {
+    Act::Flag { flag: flag.to_owned(), footprints, bands: None }
+}
+
+impl Record {
+    /// Writes down what the tests say, in place of what the same rulebook said before. Where it
+    /// says the same again, nothing is written. A person's word stands whatever the tests say.
+    ///
+    /// # Errors
+    /// A flag that the campaign does not have.
+    pub fn tests_decide(
+        &mut self,
+        screened: &Screened<'_>,
+        now: Timestamp,
+    ) -> Result<Recorded, Refusal> {
+        self.knows(&screened.rulebook.flags())?;
+        let name = &screened.rulebook.name;
+        let acts = test_acts(screened);
+        let (earlier, others) = self.standing_tests(name);
+        let mut recorded = Recorded { others, ..Recorded::default() };
+        let same = |(old, new): (&Decision, &(Act, Option<String>))| {
+            (&old.act, &old.why) == (&new.0, &new.1)
+        };
+        if earlier.len() == acts.len() && earlier.iter().zip(&acts).all(same) {
+            recorded.unchanged = true;
+            return Ok(recorded);
+        }
+        let ids: Vec<DecisionId> = earlier.into_iter().map(|decision| decision.id).collect();
+        recorded.replaced = ids.len();
+        recorded.written = acts.len();
+        for decision in ids {
+            self.decide_as_test(name, Act::Revoke { decision }, None, now);
+        }
+        for (act, why) in acts {
+            self.decide_as_test(name, act, why, now);
+        }
+        self.fold();
+        Ok(recorded)
+    }
+
+    /// Whether the campaign has all of the flags.
+    ///
+    /// # Errors
+    /// The first that it does not have.
+    pub fn knows(&self, flags: &[&str]) -> Result<(), Refusal> {
+        let kinds = self.vocabulary().of_scope(Scope::Footprint);
+        let known: Vec<&str> = kinds.iter().map(|kind| kind.name.as_str()).collect();
+        match flags.iter().find(|flag| !known.contains(*flag)) {
+            None => Ok(()),
+            Some(flag) => {
+                let (name, known) = ((*flag).to_owned(), known.join(", "));
+                Err(Refusal::UnknownFlag { name, known })
+            }
+        }
+    }
+
+    /// The decisions of one rulebook that stand, in their order, and who else decided as a test.
+    fn standing_tests(&self, rulebook: &str) -> (Vec<Decision>, Vec<String>) {
+        let (mut own, mut others) = (Vec::new(), Vec::new());
+        let stand = standing(self.decisions());
+        let standing_ones = self.decisions().iter().zip(stand).filter(|(_, stands)| *stands);
+        for (decision, _) in standing_ones {
+            match &decision.origin {
+                Origin::Test(_) if matches!(decision.act, Act::Revoke { .. }) => {}
+                Origin::Test(name) if name == rulebook => own.push(decision.clone()),
+                Origin::Test(name) if !others.contains(name) => others.push(name.clone()),
+                _ => {}
+            }
+        }
+        own.sort_by(|one, other| one.order().cmp(&other.order()));
+        (own, others)
+    }
+}

@@ -1,0 +1,165 @@
+//! Names in a rulebook: each once, none taken by the language, none that means nothing.
+
+use std::collections::BTreeMap;
+use std::ops::Range;
+
+use super::read_rulebook::{Plain, meant};
+use super::table_reader::Notebook;
+use super::threshold::Threshold;
+use crate::layers::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, functions};
+use crate::system::clean_text;
+
+/// Notes what is wrong with the names.
+pub fn check_names(
+    notebook: &mut Notebook,
+    by_name: &BTreeMap<String, Expression>,
+    plain: &Plain<'_>,
+) {
+    once(notebook, "definitions", plain.definitions, |thing| &thing.name);
+    once(notebook, "families", plain.families, |thing| &thing.name);
+    once(notebook, "surfaces", plain.surfaces, |thing| &thing.name);
+    once(notebook, "tests", plain.tests, |thing| &thing.name);
+    for (span, definition) in plain.definitions {
+        new_word(notebook, span, &definition.name);
+    }
+    for (span, key, expression) in expressions(plain) {
+        known_words(notebook, &span, &key, expression, by_name);
+    }
+    circles(notebook, by_name, plain);
+    families(notebook, plain);
+    weights(notebook, plain);
+}
+
+fn once<T>(
+    notebook: &mut Notebook,
+    key: &str,
+    things: &[(Range<usize>, T)],
+    name: impl Fn(&T) -> &String,
+) {
+    for (place, (span, thing)) in things.iter().enumerate() {
+        if things[..place].iter().any(|(_, other)| name(other) == name(thing)) {
+            let key = format!("{key} \"{}\"", clean_text(name(thing)));
+            notebook.note(span, &key, "the name is used twice");
+        }
+    }
+}
+
+/// Names that a rulebook can't give away, for expressions mean something by them already.
+fn taken() -> impl Iterator<Item = &'static str> {
+    let fields = FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name);
+    fields.chain(functions().map(|(name, _)| name)).chain(["and", "or", "not"])
+}
+
+fn new_word(notebook: &mut Notebook, span: &Range<usize>, name: &str) {
+    let key = format!("definitions \"{}\"", clean_text(name));
+    if taken().any(|word| word == name) {
+        notebook.note(span, &key, "the language has this name already; choose another");
+    } else if !Expression::parse(name).is_ok_and(|read| read.names() == [name]) {
+        notebook.note(span, &key, "a name has letters, digits and _, and no digit first");
+    }
+}
+
+fn known_words(
+    notebook: &mut Notebook,
+    span: &Range<usize>,
+    key: &str,
+    expression: &Expression,
+    by_name: &BTreeMap<String, Expression>,
+) {
+    for name in expression.names() {
+        let fields = || FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name);
+        if by_name.contains_key(name) || fields().any(|field| field == name) {
+            continue;
+        }
+        let known: Vec<&str> = by_name.keys().map(String::as_str).chain(fields()).collect();
+        let what = format!("there is no {name}{}", meant(name, &known));
+        notebook.note(span, key, format!("{what}\n    {}", clean_text(expression.text())));
+    }
+}
+
+/// Every expression of the rulebook with its place.
+fn expressions<'p>(plain: &'p Plain<'p>) -> Vec<(Range<usize>, String, &'p Expression)> {
+    let mut all = Vec::new();
+    for (span, definition) in plain.definitions {
+        let key = format!("definitions \"{}\"", definition.name);
+        all.push((span.clone(), key, &definition.expression));
+    }
+    for (span, surface) in plain.surfaces {
+        let key = format!("surfaces \"{}\", where", surface.name);
+        all.extend(surface.place.iter().map(|place| (span.clone(), key.clone(), place)));
+    }
+    for (span, test) in plain.tests {
+        let mut add = |key: &str, expression: &'p Expression| {
+            all.push((span.clone(), format!("tests \"{}\", {key}", test.name), expression));
+        };
+        test.when.iter().for_each(|when| add("when", when));
+        test.halved_when.iter().for_each(|when| add("halved_when", when));
+        for way in &test.ways {
+            add("expression", &way.expression);
+            match &way.threshold {
+                Threshold::Number(_) => {}
+                Threshold::Expression(threshold) => add("threshold", threshold),
+                Threshold::Table(table) => table.over.iter().for_each(|over| add("over", over)),
+            }
+        }
+    }
+    all
+}
+
+/// Definitions that lead back to themselves: what is left after all others were worked out.
+fn circles(notebook: &mut Notebook, by_name: &BTreeMap<String, Expression>, plain: &Plain<'_>) {
+    let mut left: Vec<&(Range<usize>, _)> = plain.definitions.iter().collect();
+    loop {
+        let before = left.len();
+        let open: Vec<&str> = left.iter().map(|(_, d)| d.name.as_str()).collect();
+        left.retain(|(_, definition)| {
+            let uses = definition.expression.names();
+            uses.iter().any(|name| by_name.contains_key(*name) && open.contains(name))
+        });
+        if left.len() == before {
+            break;
+        }
+    }
+    for (span, definition) in left {
+        let key = format!("definitions \"{}\"", definition.name);
+        notebook.note(span, &key, "the definition leads back to itself, or needs one that does");
+    }
+}
+
+fn families(notebook: &mut Notebook, plain: &Plain<'_>) {
+    let known: Vec<&str> = plain.families.iter().map(|(_, family)| family.name.as_str()).collect();
+    for (span, test) in plain.tests {
+        if !known.contains(&test.family.as_str()) {
+            let family = clean_text(&test.family);
+            let what = match known.is_empty() {
+                true => format!("there is no family {family}: write it down under [[families]]"),
+                false => format!("there is no family {family}{}", meant(&test.family, &known)),
+            };
+            notebook.note(span, &format!("tests \"{}\", family", clean_text(&test.name)), what);
+        }
+    }
+}
+
+/// Starting points and weights of flags and families that no test is about.
+fn weights(notebook: &mut Notebook, plain: &Plain<'_>) {
+    let tests = || plain.tests.iter().map(|(_, test)| test);
+    let flags: Vec<&str> = tests().map(|test| test.flag.as_str()).collect();
+    for (span, surface) in plain.surfaces {
+        let mut wrong = |key: &str, name: &str, what: String| {
+            let key = format!("surfaces \"{}\", {key}", clean_text(&surface.name));
+            notebook.note(span, &key, format!("{} {what}", clean_text(name)));
+        };
+        for flag in surface.start.keys().chain(surface.weights.keys()) {
+            if !flags.contains(&flag.as_str()) {
+                wrong("start or weights", flag, "is no flag that a test speaks about".to_owned());
+            }
+        }
+        for (flag, weights) in &surface.weights {
+            for family in weights.keys() {
+                if !tests().any(|test| test.flag == *flag && test.family == *family) {
+                    wrong("weights", family, format!("has no test that speaks about {flag}"));
+                }
+            }
+        }
+    }
+}

@@ -1,0 +1,39 @@
+//! Rulebook, tests, margins, evidence and doubt: published tests that say why.
+//!
+//! ```text
+//!  rulebook.toml --read--> Rulebook --run over Names--> values, thresholds, margins --combine--> Screened
+//! ```
+//!
+//! Uses: `system`, `units`, `spectral`, `granule`, `layers`.
+//!
+//! **Never** records anything.
+
+mod builtin;
+mod check_names;
+mod combine;
+mod evidence;
+mod lent_names;
+mod mistakes;
+mod read_rulebook;
+mod rulebook;
+mod run_tests;
+mod screened;
+mod table_reader;
+mod threshold;
+mod verdict;
+
+#[cfg(test)]
+mod combine_tests;
+#[cfg(test)]
+mod rulebook_tests;
+#[cfg(test)]
+mod worked_tests;
+
+pub use builtin::{BUILTIN_TEXT, builtin};
+pub use evidence::{Evidence, FamilyVoice, FlagEvidence, TestEvidence};
+pub use mistakes::{RuleMistake, RulebookError};
+pub use rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
+pub use run_tests::TestResult;
+pub use screened::{FlagResult, Screened, Summary, channels_of, screen};
+pub use threshold::{Sense, Table, Threshold};
+pub use verdict::Verdict;

@@ -1,0 +1,211 @@
+//! All tests over all footprints: values, thresholds, margins.
+
+use rayon::prelude::*;
+
+use super::lent_names::LentNames;
+use super::rulebook::{Rulebook, Test, Way};
+use super::threshold::Threshold;
+use super::verdict::Verdict;
+use crate::layers::{Expression, Layer, LayerError, Names, evaluate_all};
+
+/// Every expression of the rulebook is evaluated together with the others, once.
+type Layers<'l> = Vec<(&'l Expression, Result<Layer, LayerError>)>;
+
+/// What a test gave, footprint by footprint.
+#[derive(Debug, Clone)]
+pub struct TestResult {
+    /// The way of [`Test::ways`] that the file allows; `None` where it allows none.
+    pub way: Option<usize>,
+    /// Why the file does not allow the test, or not its first way; empty where it does.
+    pub lacks: String,
+    /// Why the guards can't be decided in this file; empty where they can.
+    pub guard_lacks: String,
+    /// Values; NaN where missing.
+    pub values: Vec<f64>,
+    /// Thresholds; NaN where missing.
+    pub thresholds: Vec<f64>,
+    /// Margins; NaN where the test does not speak.
+    pub margins: Vec<f64>,
+    /// Whether it speaks with half its voice.
+    pub halved: Vec<bool>,
+    /// What it says.
+    pub verdicts: Vec<Verdict>,
+    /// What a reader of the values should know.
+    pub notes: Vec<String>,
+}
+
+/// The expressions of a rulebook, each once.
+pub fn expressions(rulebook: &Rulebook) -> Vec<&Expression> {
+    let mut all: Vec<&Expression> = Vec::new();
+    let mut add = |expression| {
+        if !all.contains(&expression) {
+            all.push(expression);
+        }
+    };
+    rulebook.surfaces.iter().filter_map(|surface| surface.place.as_ref()).for_each(&mut add);
+    for test in &rulebook.tests {
+        test.when.iter().chain(&test.halved_when).for_each(&mut add);
+        for way in &test.ways {
+            add(&way.expression);
+            match &way.threshold {
+                Threshold::Number(_) => {}
+                Threshold::Expression(threshold) => add(threshold),
+                Threshold::Table(table) => table.over.iter().for_each(&mut add),
+            }
+        }
+    }
+    all
+}
+
+/// The surface of each footprint, by place in the rulebook, and what each test gave.
+pub fn run(rulebook: &Rulebook, names: &dyn Names) -> (Vec<Option<usize>>, Vec<TestResult>) {
+    let names = LentNames { names, definitions: &rulebook.by_name };
+    let expressions = expressions(rulebook);
+    let layers = evaluate_all(&expressions, &names);
+    let layers: Layers<'_> = expressions.into_iter().zip(layers).collect();
+    let surfaces = surfaces(rulebook, &layers, names.footprints());
+    let tests = rulebook.tests.par_iter().map(|test| one(test, &surfaces, &layers)).collect();
+    (surfaces, tests)
+}
+
+/// Each footprint takes the first surface that holds; one that can't be decided does not hold.
+fn surfaces(rulebook: &Rulebook, layers: &Layers<'_>, footprints: usize) -> Vec<Option<usize>> {
+    let holds: Vec<Option<&[f64]>> = rulebook
+        .surfaces
+        .iter()
+        .map(|surface| {
+            let place = surface.place.as_ref()?;
+            Some(found(layers, place).map_or(&[][..], |layer| &layer.values))
+        })
+        .collect();
+    let holds_at = |holds: &Option<&[f64]>, footprint: usize| match holds {
+        None => true,
+        Some(values) => values.get(footprint).is_some_and(|value| is_true(*value)),
+    };
+    (0..footprints).map(|at| holds.iter().position(|holds| holds_at(holds, at))).collect()
+}
+
+fn is_true(value: f64) -> bool {
+    value != 0.0 && !value.is_nan()
+}
+
+fn found<'l>(layers: &'l Layers<'_>, wanted: &Expression) -> Result<&'l Layer, &'l LayerError> {
+    // Every expression that is looked for was put there by `expressions`.
+    let at = layers.iter().position(|(expression, _)| *expression == wanted).unwrap_or_default();
+    layers[at].1.as_ref()
+}
+
+/// The layers of the way that the file allows.
+struct Chosen<'l> {
+    place: usize,
+    way: &'l Way,
+    value: &'l Layer,
+    /// What the threshold is worked out from.
+    over: Vec<&'l Layer>,
+}
+
+fn choose<'l>(test: &'l Test, layers: &'l Layers<'_>) -> (Option<Chosen<'l>>, String) {
+    let mut lacks = String::new();
+    for (place, way) in test.ways.iter().enumerate() {
+        match layers_of(way, layers) {
+            Ok((value, over)) => return (Some(Chosen { place, way, value, over }), lacks),
+            Err(error) if lacks.is_empty() => lacks = error.mistake().in_one_line(),
+            Err(_) => {}
+        }
+    }
+    (None, lacks)
+}
+
+fn layers_of<'l>(
+    way: &Way,
+    layers: &'l Layers<'_>,
+) -> Result<(&'l Layer, Vec<&'l Layer>), &'l LayerError> {
+    let value = found(layers, &way.expression)?;
+    let over = match &way.threshold {
+        Threshold::Number(_) => Vec::new(),
+        Threshold::Expression(threshold) => vec![found(layers, threshold)?],
+        Threshold::Table(table) => {
+            table.over.iter().map(|over| found(layers, over)).collect::<Result<_, _>>()?
+        }
+    };
+    Ok((value, over))
+}
+
+impl Chosen<'_> {
+    fn threshold(&self, footprint: usize) -> f64 {
+        match &self.way.threshold {
+            Threshold::Number(number) => *number,
+            Threshold::Expression(_) => self.over[0].values[footprint],
+            Threshold::Table(table) => {
+                let place: Vec<f64> =
+                    self.over.iter().map(|layer| layer.values[footprint]).collect();
+                table.value(&place)
+            }
+        }
+    }
+
+    fn is_not_positive(&self, footprint: usize) -> bool {
+        let mut layers = std::iter::once(&self.value).chain(&self.over);
+        layers.any(|layer| layer.not_positive.binary_search(&footprint).is_ok())
+    }
+}
+
+fn one(test: &Test, surfaces: &[Option<usize>], layers: &Layers<'_>) -> TestResult {
+    let footprints = surfaces.len();
+    let (chosen, lacks) = choose(test, layers);
+    let guard = test.when.as_ref().map(|when| found(layers, when));
+    let halving = test.halved_when.as_ref().and_then(|when| found(layers, when).ok());
+    let guard_lacks = match &guard {
+        Some(Err(error)) => error.mistake().in_one_line(),
+        _ => String::new(),
+    };
+    let mut result = TestResult {
+        way: chosen.as_ref().map(|chosen| chosen.place),
+        lacks,
+        guard_lacks,
+        values: vec![f64::NAN; footprints],
+        thresholds: vec![f64::NAN; footprints],
+        margins: vec![f64::NAN; footprints],
+        halved: vec![false; footprints],
+        verdicts: vec![Verdict::NotInFile; footprints],
+        notes: chosen.as_ref().map_or_else(Vec::new, |chosen| chosen.value.notes.clone()),
+    };
+    for (footprint, surface) in surfaces.iter().enumerate() {
+        if let Some(chosen) = &chosen {
+            result.values[footprint] = chosen.value.values[footprint];
+            result.thresholds[footprint] = chosen.threshold(footprint);
+        }
+        let guard = match &guard {
+            None => 1.0,
+            Some(Err(_)) => f64::NAN,
+            Some(Ok(layer)) => layer.values[footprint],
+        };
+        let used = surface.is_some_and(|surface| test.surfaces.contains(&surface));
+        result.verdicts[footprint] = match &chosen {
+            _ if !used => Verdict::OtherSurface,
+            None => Verdict::NotInFile,
+            Some(_) if guard.is_nan() => Verdict::GuardUnknown,
+            Some(_) if guard == 0.0 => Verdict::Guarded,
+            Some(chosen) => result.speak(chosen, footprint),
+        };
+        result.halved[footprint] = halving.is_some_and(|layer| is_true(layer.values[footprint]));
+    }
+    result
+}
+
+impl TestResult {
+    fn speak(&mut self, chosen: &Chosen<'_>, footprint: usize) -> Verdict {
+        let (value, threshold) = (self.values[footprint], self.thresholds[footprint]);
+        let margin = chosen.way.sense.margin(value, threshold, chosen.way.softness);
+        self.margins[footprint] = margin;
+        if margin > 0.0 {
+            Verdict::For
+        } else if margin <= 0.0 {
+            Verdict::Against
+        } else if chosen.is_not_positive(footprint) {
+            Verdict::NotPositive
+        } else {
+            Verdict::Missing
+        }
+    }
+}

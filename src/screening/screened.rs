@@ -1,0 +1,223 @@
+//! A granule screened: tests, flags, doubt.
+
+use std::collections::BTreeMap;
+
+use rayon::prelude::*;
+
+use super::combine::{Conclusion, Voice, conclude, family_voice};
+use super::lent_names::LentNames;
+use super::rulebook::Rulebook;
+use super::run_tests::{TestResult, expressions, run};
+use crate::granule::Channel;
+use crate::layers::{Names, channels_needed};
+
+/// The channels that must have been read before a granule can be screened, each once and in the
+/// file's order.
+pub fn channels_of(rulebook: &Rulebook, names: &dyn Names) -> Vec<Channel> {
+    let names = LentNames { names, definitions: &rulebook.by_name };
+    channels_needed(&expressions(rulebook), &names)
+}
+
+/// What the tests say about a granule.
+#[derive(Debug, Clone)]
+pub struct Screened<'r> {
+    /// The rulebook.
+    pub rulebook: &'r Rulebook,
+    /// The surface of each footprint, by place in the rulebook; `None` where none holds.
+    pub surfaces: Vec<Option<usize>>,
+    /// What each test gave, in the order of the rulebook.
+    pub tests: Vec<TestResult>,
+    /// What is concluded about each flag.
+    pub flags: Vec<FlagResult>,
+    /// Footprints of which something can be said; the others are not assessed.
+    pub assessed: Vec<bool>,
+    /// 0 plain, 1 a coin toss or hardly assessed.
+    pub doubt: Vec<f64>,
+}
+
+/// What is concluded about a flag, footprint by footprint.
+#[derive(Debug, Clone)]
+pub struct FlagResult {
+    /// The flag.
+    pub flag: String,
+    /// One for each footprint.
+    pub conclusions: Vec<Conclusion>,
+}
+
+impl FlagResult {
+    /// Whether the tests set the flag.
+    pub fn is_set(&self, footprint: usize) -> bool {
+        // Not a number where no test speaks, and then not set.
+        self.conclusions[footprint].probability >= 0.5
+    }
+}
+
+/// How a granule came out.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct Summary {
+    /// All footprints.
+    pub footprints: usize,
+    /// Footprints by flag, in the order of the rulebook, `doubtful` last.
+    pub flagged: Vec<(String, usize)>,
+    /// Assessed footprints without any flag but `doubtful`.
+    pub no_flag: usize,
+    /// Footprints of which nothing can be said.
+    pub not_assessed: usize,
+    /// Mean doubt of the assessed footprints; NaN where there are none.
+    pub mean_doubt: f64,
+}
+
+/// Runs all tests over all footprints. Each number is the same with any number of threads.
+pub fn screen<'r>(rulebook: &'r Rulebook, names: &dyn Names) -> Screened<'r> {
+    let (surfaces, tests) = run(rulebook, names);
+    let councils = Councils::of(rulebook);
+    let flags: Vec<FlagResult> = rulebook
+        .flags()
+        .par_iter()
+        .map(|flag| FlagResult {
+            flag: (*flag).to_owned(),
+            conclusions: (0..surfaces.len())
+                .map(|footprint| councils.conclude(flag, surfaces[footprint], footprint, &tests))
+                .collect(),
+        })
+        .collect();
+    let footprints = 0..surfaces.len();
+    let assessed = footprints.clone().map(|at| is_assessed(rulebook, &flags, at)).collect();
+    let doubt = footprints.map(|at| doubt(&flags, at)).collect();
+    Screened { rulebook, surfaces, tests, flags, assessed, doubt }
+}
+
+/// A family that speaks about a flag on a surface.
+pub struct Seat<'r> {
+    /// Its name.
+    pub family: &'r str,
+    /// Its weight.
+    pub weight: f64,
+    /// Its tests, by place in the rulebook.
+    pub tests: Vec<usize>,
+}
+
+/// Who speaks about a flag on a surface.
+pub struct Councils<'r> {
+    rulebook: &'r Rulebook,
+    seats: BTreeMap<(usize, &'r str), Vec<Seat<'r>>>,
+}
+
+impl<'r> Councils<'r> {
+    /// The councils of a rulebook.
+    pub fn of(rulebook: &'r Rulebook) -> Self {
+        let mut seats: BTreeMap<(usize, &str), Vec<Seat<'_>>> = BTreeMap::new();
+        for (place, test) in rulebook.tests.iter().enumerate() {
+            for surface in &test.surfaces {
+                let council = seats.entry((*surface, &test.flag)).or_default();
+                match council.iter_mut().find(|seat| seat.family == test.family) {
+                    Some(seat) => seat.tests.push(place),
+                    None => {
+                        let surface = &rulebook.surfaces[*surface];
+                        let weight = surface.weight_of(&test.flag, &test.family);
+                        council.push(Seat { family: &test.family, weight, tests: vec![place] });
+                    }
+                }
+            }
+        }
+        Self { rulebook, seats }
+    }
+
+    /// Who speaks about a flag on a surface.
+    pub fn seats<'s>(&'s self, flag: &'s str, surface: usize) -> &'s [Seat<'s>] {
+        self.seats.get(&(surface, flag)).map_or(&[], Vec::as_slice)
+    }
+
+    /// Log-odds of a family at a footprint, if it speaks.
+    pub fn voice(&self, of: &[usize], footprint: usize, tests: &[TestResult]) -> Option<f64> {
+        family_voice(of.iter().map(|place| self.single(*place, footprint, tests)))
+    }
+
+    /// One test's contribution.
+    pub fn single(&self, place: usize, footprint: usize, tests: &[TestResult]) -> Voice {
+        Voice {
+            margin: tests[place].margins[footprint],
+            halved: tests[place].halved[footprint],
+            against: self.rulebook.tests[place].against,
+        }
+    }
+
+    fn conclude(
+        &self,
+        flag: &str,
+        surface: Option<usize>,
+        footprint: usize,
+        tests: &[TestResult],
+    ) -> Conclusion {
+        let Some(surface) = surface else { return conclude(0.0, []) };
+        let seats = self.seats(flag, surface).iter();
+        conclude(
+            self.rulebook.surfaces[surface].start_of(flag),
+            seats.map(|seat| (seat.weight, self.voice(&seat.tests, footprint, tests))),
+        )
+    }
+}
+
+/// A footprint is assessed where the flags that matter have been tested, or where one is set.
+fn is_assessed(rulebook: &Rulebook, flags: &[FlagResult], at: usize) -> bool {
+    let tested = |name: &String| {
+        flags.iter().any(|flag| flag.flag == *name && flag.conclusions[at].coverage > 0.0)
+    };
+    flags.iter().any(|flag| flag.is_set(at)) || rulebook.assess.iter().all(tested)
+}
+
+/// Where a flag is set, the doubt about the plainest of them: one is enough to know what the
+/// footprint is worth. Else the largest doubt about any flag that was tested.
+fn doubt(flags: &[FlagResult], at: usize) -> f64 {
+    let of = |flag: &FlagResult| flag.conclusions[at].doubt;
+    let set = flags.iter().filter(|flag| flag.is_set(at)).map(of).reduce(f64::min);
+    let tested = flags.iter().filter(|flag| flag.conclusions[at].coverage > 0.0).map(of);
+    set.or_else(|| tested.reduce(f64::max)).unwrap_or(1.0)
+}
+
+impl Screened<'_> {
+    /// Number of footprints.
+    pub fn footprints(&self) -> usize {
+        self.surfaces.len()
+    }
+
+    /// Whether the tests leave a footprint in doubt.
+    pub fn is_doubtful(&self, footprint: usize) -> bool {
+        self.assessed[footprint] && self.doubt[footprint] >= self.rulebook.doubt_cut
+    }
+
+    /// Tests of a flag that speak for it somewhere where it is set, with the number of footprints.
+    pub fn speakers(&self, flag: &FlagResult) -> Vec<(&str, usize)> {
+        let tests = self.rulebook.tests.iter().zip(&self.tests);
+        tests
+            .filter(|(test, _)| test.flag == flag.flag)
+            .filter_map(|(test, result)| {
+                let speaks = |at: &usize| flag.is_set(*at) && result.margins[*at] > 0.0;
+                let count = (0..self.footprints()).filter(speaks).count();
+                (count > 0).then_some((test.name.as_str(), count))
+            })
+            .collect()
+    }
+
+    /// How the granule came out.
+    pub fn summary(&self) -> Summary {
+        let all = || 0..self.footprints();
+        let assessed: Vec<usize> = all().filter(|at| self.assessed[*at]).collect();
+        let mut flagged: Vec<(String, usize)> = self
+            .flags
+            .iter()
+            .map(|flag| (flag.flag.clone(), all().filter(|at| flag.is_set(*at)).count()))
+            .collect();
+        let doubtful = all().filter(|at| self.is_doubtful(*at)).count();
+        flagged.push(("doubtful".to_owned(), doubtful));
+        let plain = |at: &&usize| !self.flags.iter().any(|flag| flag.is_set(**at));
+        let doubt: f64 = assessed.iter().map(|at| self.doubt[*at]).sum();
+        Summary {
+            footprints: self.footprints(),
+            flagged,
+            no_flag: assessed.iter().filter(plain).count(),
+            not_assessed: self.footprints() - assessed.len(),
+            mean_doubt: doubt / assessed.len() as f64,
+        }
+    }
+}
