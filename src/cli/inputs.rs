@@ -33,6 +33,25 @@ pub struct Reading {
     /// Seconds after which a file that does not answer is given up
     #[arg(long, hide = true, value_name = "SECONDS", value_parser = seconds)]
     pub reader_limit: Option<Duration>,
+    /// Memory that the values of one file may take, as in `800M` or `4G`; most of what is free where
+    /// nothing is said
+    #[arg(long, value_name = "SIZE", value_parser = size)]
+    pub memory: Option<u64>,
+}
+
+/// Bytes, with K, M, G or T for powers of 1024 as in batch systems.
+fn size(text: &str) -> Result<u64, String> {
+    let digits = text.trim_end_matches(|letter: char| !letter.is_ascii_digit());
+    let shift = match &text[digits.len()..] {
+        "" => 0,
+        "K" | "k" => 10,
+        "M" | "m" => 20,
+        "G" | "g" => 30,
+        "T" | "t" => 40,
+        _ => return Err("a number and one of K, M, G, T, as in 800M".into()),
+    };
+    let number: u64 = digits.parse().map_err(|_| "not a number".to_owned())?;
+    number.checked_mul(1 << shift).ok_or_else(|| "too large".into())
 }
 
 fn seconds(text: &str) -> Result<Duration, String> {
@@ -45,7 +64,11 @@ impl Reading {
     /// The limits of the reader processes.
     pub fn limits(&self) -> ReadLimits {
         let defaults = ReadLimits::default();
-        ReadLimits { per_request: self.reader_limit.unwrap_or(defaults.per_request), ..defaults }
+        ReadLimits {
+            per_request: self.reader_limit.unwrap_or(defaults.per_request),
+            values: self.memory,
+            ..defaults
+        }
     }
 }
 
@@ -208,6 +231,16 @@ mod tests {
         let files = inputs.files_with(&mut stdin.as_bytes())?;
         let name = |file: &PathBuf| file.file_name().unwrap().to_str().unwrap().to_owned();
         Ok(files.iter().map(name).collect())
+    }
+
+    #[test]
+    fn sizes_are_read_as_batch_systems_write_them() {
+        assert_eq!(size("800"), Ok(800));
+        assert_eq!(size("2K"), Ok(2048));
+        assert_eq!(size("4G"), Ok(4 << 30));
+        for bad in ["", "G", "4 G", "4GB", "-1", "1.5G", "99999999999T"] {
+            assert!(size(bad).is_err(), "{bad}");
+        }
     }
 
     #[test]

@@ -140,6 +140,13 @@ impl Cube {
         (0..self.bands.len()).all(|band| self.is_complete(band))
     }
 
+    /// Bytes of the values that are here.
+    pub fn held_bytes(&self) -> u64 {
+        let slabs = self.bands.iter().flat_map(|band| &band.slabs).filter_map(OnceLock::get);
+        let bytes = |slab: &Samples| slab.len() as u64 * slab.kind().size().unwrap_or(8) as u64;
+        slabs.map(bytes).sum()
+    }
+
     /// Puts a slab in its place: footprint by footprint, the channels of each side by side.
     pub(super) fn set_slab(&self, band: usize, slab: usize, samples: Samples) {
         let band = &self.bands[band];

@@ -20,7 +20,7 @@ use crate::netcdf_files::{
     Demand, FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable,
 };
 use crate::spectral::{brightness_temperature_or_nan, planck};
-use crate::system::{Cancel, clean_text};
+use crate::system::{Cancel, clean_text, free_memory};
 
 /// A file of spectra over footprints. Many threads may use it at once.
 #[derive(Debug)]
@@ -34,6 +34,7 @@ pub struct Granule {
     pub(super) variables: Vec<FootprintVariable>,
     pub(super) problems: Vec<Problem>,
     pub(super) cube: Arc<Cube>,
+    pub(super) budget: u64,
     pub(super) identity: OnceLock<Identity>,
 }
 
@@ -64,7 +65,7 @@ impl Granule {
         path: &Path,
         limits: &ReadLimits,
     ) -> Result<Self, GranuleError> {
-        super::open::open(FileReader::open(program, path, limits)?)
+        super::open::open(FileReader::open(program, path, limits)?, memory_budget(limits))
     }
 
     /// The file as it was named.
@@ -170,8 +171,8 @@ impl Granule {
     /// slab how many are done.
     ///
     /// # Errors
-    /// A slab could not be read (of several, the first one), or `cancel` was asked for. What is here
-    /// stays.
+    /// A slab could not be read (of several, the first one), or `cancel` was asked for; what is here
+    /// stays. Or all of them would take more memory than they may.
     pub fn fill(
         &self,
         cancel: &Cancel,
@@ -189,6 +190,7 @@ impl Granule {
     ) -> Result<(), GranuleError> {
         let slabs = |band| (0..self.cube.slabs(band)).map(move |slab| (band, slab));
         let slabs: Vec<(usize, usize)> = bands.into_iter().flat_map(slabs).collect();
+        self.check_room(&slabs)?;
         let fill = |(band, slab)| match cancel.is_cancelled() {
             true => Err(GranuleError::Cancelled),
             false => self.fill_slab_until(band, slab, Some(cancel)),
@@ -196,6 +198,31 @@ impl Granule {
         let _at_work = self.reader.at_work();
         let mut tell = |done| progress(Progress { done, total: slabs.len() });
         side_by_side(&slabs, fill, &mut tell)
+    }
+
+    /// An error if the cube would take more memory than it may with these slabs in it.
+    fn check_room(&self, slabs: &[(usize, usize)]) -> Result<(), GranuleError> {
+        let bytes = |band: usize, slab| {
+            let size = self.band_variable(band).kind.size().unwrap_or(8);
+            let values = self
+                .cube
+                .footprints_of(band, slab)
+                .len()
+                .saturating_mul(self.bands[band].channels());
+            values.saturating_mul(size) as u64
+        };
+        let new = slabs.iter().filter(|(band, slab)| !self.cube.has_slab(*band, *slab));
+        let needed = new.map(|(band, slab)| bytes(*band, *slab)).fold(0, u64::saturating_add);
+        let all = self.cube.held_bytes().saturating_add(needed);
+        match needed == 0 || all <= self.budget {
+            true => Ok(()),
+            false => Err(GranuleError::TooLarge {
+                path: self.path().to_owned(),
+                bytes: all,
+                budget: self.budget,
+                dimension: self.footprints.names().first().cloned().unwrap_or_default(),
+            }),
+        }
     }
 
     /// Reads one slab of a band, if it is not here yet.
@@ -317,4 +344,11 @@ impl Granule {
     pub fn absolute_path(&self) -> PathBuf {
         std::path::absolute(self.path()).unwrap_or_else(|_| self.path().to_owned())
     }
+}
+
+/// What the values of a file may take: most of what is free where nothing is said. The rest is for the
+/// layers made of them.
+fn memory_budget(limits: &ReadLimits) -> u64 {
+    let most = |free: u64| free / 4 * 3;
+    limits.values.or_else(|| free_memory().map(most)).unwrap_or(u64::MAX)
 }

@@ -22,8 +22,8 @@ use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadFault, Variable}
 /// More footprints than any granule has; the screen and the layers hold numbers for each.
 const MOST_FOOTPRINTS: usize = 20_000_000;
 
-/// Understands an open file.
-pub fn open(reader: FileReader) -> Result<Granule, GranuleError> {
+/// Understands an open file, whose values may take `budget` bytes of memory.
+pub fn open(reader: FileReader, budget: u64) -> Result<Granule, GranuleError> {
     let index = reader.index();
     let mut problems: Vec<Problem> = index
         .unreadable
@@ -69,6 +69,7 @@ pub fn open(reader: FileReader) -> Result<Granule, GranuleError> {
         variables: footprint_variables,
         problems,
         cube,
+        budget,
         identity: OnceLock::new(),
         reader,
     })

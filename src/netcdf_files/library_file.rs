@@ -20,6 +20,10 @@ const DEEPEST_GROUP: usize = 32;
 const MOST_ENTRIES: usize = 50_000;
 /// Attributes longer than this are no metadata, and are left out of the index.
 const LONGEST_ATTRIBUTE: usize = 1 << 20;
+/// All attributes together, in bytes of their values; those that come later are left out.
+const ALL_ATTRIBUTES: usize = 16 << 20;
+/// More than this that cannot be read is counted, not named.
+const MOST_UNREADABLE: usize = 100;
 
 /// What the library said when it refused.
 pub type Refusal = String;
@@ -49,6 +53,8 @@ impl LibraryFile {
                 unreadable: Vec::new(),
             },
             storage: StorageView::open(&self.path),
+            attribute_room: ALL_ATTRIBUTES,
+            unnamed: 0,
         };
         match self.file.root() {
             Some(root) => walk.group(&root, String::new(), None, 0)?,
@@ -59,7 +65,7 @@ impl LibraryFile {
                 walk.variables(group, self.file.variables())?;
             }
         }
-        Ok(walk.index)
+        Ok(walk.finish())
     }
 
     /// Reads a block of values of a fixed size into `bytes`, in the machine's order; tells their type.
@@ -156,9 +162,25 @@ fn classic_format(path: &Path) -> FileFormat {
 struct Walk {
     index: FileIndex,
     storage: Option<StorageView>,
+    attribute_room: usize,
+    unnamed: usize,
 }
 
 impl Walk {
+    fn finish(mut self) -> FileIndex {
+        if self.unnamed > 0 {
+            self.index.unreadable.push(format!("{} more", self.unnamed));
+        }
+        self.index
+    }
+
+    fn leave_out(&mut self, what: String) {
+        match self.index.unreadable.len() < MOST_UNREADABLE {
+            true => self.index.unreadable.push(what),
+            false => self.unnamed += 1,
+        }
+    }
+
     fn group(
         &mut self,
         group: &netcdf::Group<'_>,
@@ -218,7 +240,7 @@ impl Walk {
             let path = joined(&self.index.groups[group].path, &name);
             match calmly(|| self.variable(group, &path, name, &variable)) {
                 Some(Some(variable)) => self.index.variables.push(variable),
-                _ => self.index.unreadable.push(format!("variable `{path}`")),
+                _ => self.leave_out(format!("variable `{path}`")),
             }
         }
         Ok(())
@@ -274,12 +296,15 @@ impl Walk {
             let name = calmly(|| attribute.name().to_owned());
             let value = calmly(|| attribute.value().ok()).flatten().map(attribute_of);
             match (name, value) {
-                (Some(name), Some(value)) if length(&value) <= LONGEST_ATTRIBUTE => {
+                (Some(name), Some(value))
+                    if length(&value) <= LONGEST_ATTRIBUTE.min(self.attribute_room) =>
+                {
+                    self.attribute_room -= length(&value);
                     read.push(Attribute { name, value });
                 }
                 (name, _) => {
                     let name = name.unwrap_or_else(|| format!("number {}", number + 1));
-                    self.index.unreadable.push(format!("attribute {name} of `{owner}`"));
+                    self.leave_out(format!("attribute {name} of `{owner}`"));
                 }
             }
         }

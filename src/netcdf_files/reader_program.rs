@@ -23,18 +23,21 @@ impl ReaderProgram {
     }
 }
 
-/// What a reader may use.
+/// What a reader, and the values that it brings, may use.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct ReadLimits {
     /// How long one question may take; opening is one question.
     pub per_request: Duration,
-    /// Bytes of address space.
+    /// Bytes of address space of the reader process.
     pub memory: u64,
+    /// Bytes that the values of one file may take in this process; as the machine allows where none
+    /// are given.
+    pub values: Option<u64>,
 }
 
 impl Default for ReadLimits {
     /// Ten seconds a question and 2 GiB.
     fn default() -> Self {
-        Self { per_request: Duration::from_secs(10), memory: 2 << 30 }
+        Self { per_request: Duration::from_secs(10), memory: 2 << 30, values: None }
     }
 }

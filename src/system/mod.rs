@@ -8,6 +8,7 @@ mod cancel;
 mod clean_text;
 mod cores;
 mod deadline;
+mod memory;
 mod unchanged;
 mod whole_file;
 
@@ -15,5 +16,6 @@ pub use cancel::Cancel;
 pub use clean_text::clean_text;
 pub use cores::cores;
 pub use deadline::Deadline;
+pub use memory::free_memory;
 pub use unchanged::FileStamp;
 pub use whole_file::{WriteError, write_whole};
