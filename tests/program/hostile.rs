@@ -1,14 +1,12 @@
 //! Damaged and odd files from outside: a clean message, in time, and nothing left behind.
 
+mod corpus;
 mod hanging_granule;
 mod missing_filter;
 
 use std::path::Path;
 use std::process::{Command, Stdio};
 use std::time::{Duration, Instant};
-
-use rand::{RngExt, SeedableRng};
-use rand_chacha::ChaCha8Rng;
 
 use hanging_granule::{granule_that_hangs, small_granule};
 use radsieve::netcdf_files::{NetcdfWriter, ValueKind, VariableDraft};
@@ -59,55 +57,6 @@ fn wait_for_readers(folder: &Path, count: usize) {
         assert!(begun.elapsed() < PATIENCE, "{} readers instead of {count}", readers_of(folder));
         std::thread::sleep(Duration::from_millis(2));
     }
-}
-
-/// One way to damage a file.
-fn damaged(bytes: &[u8], seed: u64) -> (String, Vec<u8>) {
-    let mut random = ChaCha8Rng::seed_from_u64(seed);
-    let mut bytes = bytes.to_vec();
-    let place = random.random_range(0..bytes.len());
-    let what = match seed % 3 {
-        0 => {
-            let end = (place + [16, 64, 512][random.random_range(0..3)]).min(bytes.len());
-            bytes[place..end].fill(0);
-            format!("zeros from {place} to {end}")
-        }
-        1 => {
-            for _ in 0..4 {
-                let place = random.random_range(0..bytes.len());
-                bytes[place] ^= 1 << random.random_range(0..8);
-            }
-            "four flipped bits".to_owned()
-        }
-        _ => {
-            bytes.truncate(place);
-            format!("cut to {place} bytes")
-        }
-    };
-    (format!("seed {seed}: {what}"), bytes)
-}
-
-#[test]
-fn damage_is_read_over_or_refused_in_time_without_a_trace() {
-    let folder = tempfile::tempdir().unwrap();
-    let whole = std::fs::read(small_granule(folder.path())).unwrap();
-    let try_seed = |seed| {
-        let (what, bytes) = damaged(&whole, seed);
-        let path = folder.path().join(format!("damaged_{seed}.nc"));
-        std::fs::write(&path, bytes).unwrap();
-        // A reader that is stopped after half a second because the machine is busy gives a clean
-        // error as well, so the short limit cannot make this test fail.
-        let (code, text) = described(&path, "0.5");
-        assert!(matches!(code, Some(0 | 4)), "{what}: {code:?} {text}");
-        assert!(!text.contains("panicked"), "{what}: {text}");
-        assert!(code == Some(0) || text.starts_with("radsieve: "), "{what}: {text}");
-    };
-    std::thread::scope(|scope| {
-        for worker in 0..3 {
-            scope.spawn(move || (0..32).for_each(|number| try_seed(number * 3 + worker)));
-        }
-    });
-    wait_for_readers(folder.path(), 0);
 }
 
 #[test]
@@ -206,6 +155,23 @@ fn a_file_larger_than_memory_on_paper_only_is_refused() {
     writer.variable(&radiance).unwrap();
     writer.close().unwrap();
     assert!(refused(&path).contains("footprints"));
+}
+
+#[test]
+fn values_that_take_more_memory_than_they_may_are_refused() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = small_granule(folder.path());
+    let tabulated = |memory: &str| {
+        let arguments = ["tabulate", "--layer", "bt(900)", "--memory", memory];
+        let output = program(&arguments, &path).output().unwrap();
+        (output.status.code(), String::from_utf8(output.stderr).unwrap())
+    };
+    // 192 values of four bytes.
+    assert_eq!(tabulated("768").0, Some(0));
+    let (code, text) = tabulated("767");
+    assert_eq!(code, Some(4), "{text}");
+    assert!(text.contains("ncks -d line,0,999") && text.contains("--memory"), "{text}");
+    assert_eq!(tabulated("4 parsecs").0, Some(2));
 }
 
 /// Whether the kernel can shut a process into one file.

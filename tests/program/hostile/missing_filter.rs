@@ -22,8 +22,8 @@ pub fn with_another_filter(file: &[u8]) -> Vec<u8> {
     assert_eq!(file[deflate], 1, "deflate follows shuffle");
     file[deflate] = UNASSIGNED;
     let header = file[..pipeline].windows(4).rposition(|window| window == b"OHDR").unwrap();
-    let (begin, end) = (header, header + header_length(&file[header..]));
-    let checksum = lookup3(&file[begin..end]);
+    let end = checksum_place(&file, header);
+    let checksum = lookup3(&file[header..end]);
     file[end..end + 4].copy_from_slice(&checksum.to_le_bytes());
     file
 }
@@ -31,6 +31,11 @@ pub fn with_another_filter(file: &[u8]) -> Vec<u8> {
 fn find(file: &[u8], version: &[u8], filter: &[u8]) -> usize {
     let wanted: Vec<u8> = version.iter().chain(filter).copied().collect();
     file.windows(wanted.len()).position(|window| window == wanted).unwrap()
+}
+
+/// Where the checksum of the object header at `header` stands.
+pub fn checksum_place(file: &[u8], header: usize) -> usize {
+    header + header_length(&file[header..])
 }
 
 /// The length of an object header's first chunk without its checksum.
@@ -47,7 +52,7 @@ fn header_length(header: &[u8]) -> usize {
 
 /// Bob Jenkins' lookup3 (`hashlittle`, initial value 0), the checksum of HDF5's metadata.
 /// Source: burtleburtle.net/bob/c/lookup3.c, public domain.
-fn lookup3(bytes: &[u8]) -> u32 {
+pub fn lookup3(bytes: &[u8]) -> u32 {
     let start = 0xdead_beef_u32.wrapping_add(bytes.len() as u32);
     let mut state = [start; 3];
     let mut rest = bytes;
