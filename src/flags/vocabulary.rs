@@ -52,15 +52,15 @@ type Row = (&'static str, u8, Scope, char, char, bool, &'static str);
 /// The released flags. A bit, once released, never changes and is never used again.
 #[rustfmt::skip]
 const RELEASED: &[Row] = &[
-    ("cloudy",          0, Scope::Footprint, 'C', 'c', true,  "cloud fills enough of the footprint to change its radiances"),
+    ("cloudy",          0, Scope::Footprint, 'C', 'c', true,  "cloud changes the footprint's radiances"),
     ("thin_cloud",      1, Scope::Footprint, 'T', 't', true,  "thin or partial cloud; says nothing about `cloudy`"),
-    ("dust_or_ash",     2, Scope::Footprint, 'D', 'd', true,  "mineral dust or volcanic ash; a screening aid, not a warning"),
-    ("so2",             3, Scope::Footprint, 'S', 's', true,  "sulphur dioxide absorption beyond the ordinary; a screening aid, not a warning"),
-    ("bad_spectrum",    4, Scope::Footprint, 'B', 'b', true,  "the spectrum, or that of the named bands, cannot be trusted"),
-    ("bad_geolocation", 5, Scope::Footprint, 'G', 'g', true,  "position, time or angles cannot be trusted"),
-    ("surface_anomaly", 6, Scope::Footprint, 'A', 'a', false, "the surface looks unlike what is expected there: fire, flood, snow, odd emissivity"),
+    ("dust_or_ash",     2, Scope::Footprint, 'D', 'd', true,  "mineral dust or volcanic ash; no warning service"),
+    ("so2",             3, Scope::Footprint, 'S', 's', true,  "uncommon sulphur dioxide; no warning service"),
+    ("bad_spectrum",    4, Scope::Footprint, 'B', 'b', true,  "spectrum, or that of named bands, not to be trusted"),
+    ("bad_geolocation", 5, Scope::Footprint, 'G', 'g', true,  "position, time or angles not to be trusted"),
+    ("surface_anomaly", 6, Scope::Footprint, 'A', 'a', false, "an unexpected surface: fire, flood, snow, emissivity"),
     ("unusual",         7, Scope::Footprint, 'U', 'u', false, "a spectrum unlike the others, for no reason known yet"),
-    ("doubtful",        8, Scope::Footprint, '?', 'o', false, "the tests are unsure: doubt of 0.5 or more, or the campaign's cut"),
+    ("doubtful",        8, Scope::Footprint, '?', 'o', false, "the tests are unsure: doubt at or above the cut (0.5)"),
     ("noisy",           0, Scope::Channel,   'N', 'n', false, "noise well above that of its neighbours"),
     ("dead",            1, Scope::Channel,   'X', 'x', false, "no signal"),
     ("popping",         2, Scope::Channel,   'P', 'p', false, "jumps between levels"),
