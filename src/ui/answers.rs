@@ -76,6 +76,8 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     let problems = bench.review.granule().problems().len();
     app.table = Table::Bench(Box::new(bench));
     match problems {
+        // Why files before this one were passed over has to stay to be read.
+        _ if app.message.1 == Tone::Bad => {}
         0 => app.say(""),
         count => app.say(format!("{count} found missing, guessed or odd: ! shows")),
     }

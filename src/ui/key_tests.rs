@@ -324,6 +324,7 @@ fn it_opens_at_the_first_granule_that_is_not_signed_off_and_steps_over_broken_fi
     assert_eq!(trial.granule(), "b.nc");
     trial.keys("n");
     assert_eq!(trial.granule(), "c.nc", "the broken file is stepped over");
+    assert!(trial.message().starts_with("broken.nc: "), "and named: {}", trial.message());
     assert!(trial.app.tray.entry(2).unwrap().error.is_some());
     trial.keys("n");
     assert_eq!((trial.granule().as_str(), trial.message()), ("c.nc", "this is the last granule"));

@@ -46,10 +46,14 @@ pub fn open_first(app: &mut App) -> Vec<Job> {
 }
 
 fn none_is_left(app: &mut App) -> Vec<Job> {
-    let why = hint_key(Action::Problems);
+    let why = problems_key();
     app.message = (format!("none of the files can be used; {why} says why"), Tone::Bad);
     app.focus = Pane::Tray;
     Vec::new()
+}
+
+fn problems_key() -> String {
+    hint_key(Action::Problems)
 }
 
 /// Next, previous, next not signed off, or the one under the Tray's cursor.
@@ -128,7 +132,12 @@ pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: St
         return Vec::new();
     };
     let jobs = open(app, next, direction);
-    app.message = (format!("{name}: {why}"), Tone::Bad);
+    let bad = app.tray.entries().iter().filter(|entry| entry.error.is_some()).count();
+    let why = match bad {
+        1 => format!("{name}: {why}"),
+        _ => format!("{bad} files cannot be used ({} says why), {name}: {why}", problems_key()),
+    };
+    app.message = (why, Tone::Bad);
     jobs
 }
 

@@ -48,8 +48,7 @@ fn measured(label: &str, value: f64, unit: &str, bench: &Bench) -> EvidenceRow {
         return fact(label, words, "");
     }
     let shown = match unit {
-        // To a hundredth: noise is larger in all but the best channels.
-        "K" => format!("{:.2}", if value.abs() < 0.005 { 0.0 } else { value }),
+        "K" => super::kelvins(value),
         _ => super::number(value),
     };
     fact(label, shown, unit)

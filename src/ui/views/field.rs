@@ -90,10 +90,7 @@ fn title(bench: &Bench) -> String {
     }
     let mut title = layer.text.clone();
     if let Some(value) = layer.value(bench.cursor) {
-        title += &format!(" = {}", super::number(value));
-        if !layer.unit.is_empty() {
-            title += &format!(" {}", layer.unit);
-        }
+        title += &format!(" = {}", super::with_unit(value, &layer.unit));
     }
     if bench.wanted != layer.text {
         title += &format!(" → {}", bench.wanted);

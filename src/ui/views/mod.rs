@@ -18,6 +18,8 @@ pub use status::{hints, side_preview, status_facts};
 pub use trace::{TraceParts, wavenumber_under};
 pub use tray::{draw_tray, tray_row_under};
 
+use crate::layers::LayerUnit;
+
 /// A value in five digits: `287.43`, `-0.12500`, `1.2346e-7`.
 fn number(value: f64) -> String {
     let size = value.abs();
@@ -28,6 +30,23 @@ fn number(value: f64) -> String {
     } else {
         let decimals = (4.0 - size.log10().floor()).clamp(0.0, 7.0) as usize;
         format!("{value:.decimals$}")
+    }
+}
+
+/// A kelvin value to a hundredth: noise is larger in all but the best channels.
+fn kelvins(value: f64) -> String {
+    format!("{:.2}", if value.abs() < 0.005 { 0.0 } else { value })
+}
+
+/// A layer's value with the label of its unit, as one reads it.
+fn with_unit(value: f64, unit: &str) -> String {
+    let truth = LayerUnit::Truth.label();
+    match unit {
+        "K" => format!("{} K", kelvins(value)),
+        "" if value.fract() == 0.0 && value.abs() < 1e15 => format!("{value}"),
+        "" => number(value),
+        unit if unit == truth => if value == 0.0 { "false" } else { "true" }.to_owned(),
+        unit => format!("{} {unit}", number(value)),
     }
 }
 
@@ -43,6 +62,20 @@ mod tests {
             (0.0, "0"),
         ] {
             assert_eq!(super::number(value), text);
+        }
+    }
+
+    #[test]
+    fn values_are_read_with_their_units() {
+        for (value, unit, text) in [
+            (1.2487, "K", "1.25 K"),
+            (-0.001, "K", "0.00 K"),
+            (4.0, "", "4"),
+            (0.25, "", "0.25000"),
+            (1.0, super::LayerUnit::Truth.label(), "true"),
+            (20.2019, "degrees", "20.202 degrees"),
+        ] {
+            assert_eq!(super::with_unit(value, unit), text);
         }
     }
 }
