@@ -2,6 +2,8 @@
 
 use std::ops::Range;
 
+use ndarray::ArrayView;
+
 use crate::netcdf_files::{Samples, with_values};
 
 /// What a dimension of a band's variable counts.
@@ -59,7 +61,7 @@ impl Layout {
         }
         with_values!(
             samples,
-            values => permuted(&values, count, &order).into(),
+            values => permuted(values, count, &order).into(),
             texts => Samples::Text(texts)
         )
     }
@@ -72,32 +74,12 @@ impl Layout {
 }
 
 /// The values of a row-major block with its dimensions brought into another order.
-fn permuted<Value: Copy>(values: &[Value], count: &[usize], order: &[usize]) -> Vec<Value> {
-    let mut strides = vec![1; count.len()];
-    for axis in (1..count.len()).rev() {
-        strides[axis - 1] = strides[axis] * count[axis];
-    }
-    let mut out = Vec::with_capacity(values.len());
-    gather(values, &mut out, 0, order, count, &strides);
-    out
-}
-
-fn gather<Value: Copy>(
-    values: &[Value],
-    out: &mut Vec<Value>,
-    offset: usize,
-    order: &[usize],
-    count: &[usize],
-    strides: &[usize],
-) {
-    let Some((&axis, rest)) = order.split_first() else { return };
-    let (length, stride) = (count[axis], strides[axis]);
-    if rest.is_empty() {
-        out.extend((0..length).map(|place| values[offset + place * stride]));
-        return;
-    }
-    for place in 0..length {
-        gather(values, out, offset + place * stride, rest, count, strides);
+fn permuted<Value: Copy>(values: Vec<Value>, count: &[usize], order: &[usize]) -> Vec<Value> {
+    match ArrayView::from_shape(count, &values) {
+        Ok(block) => block.permuted_axes(order).iter().copied().collect(),
+        // The reader checks that it sends as many values as were asked for, so this is never met;
+        // the values as they are keep the right number.
+        Err(_) => values,
     }
 }
 
