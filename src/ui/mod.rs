@@ -23,6 +23,8 @@ pub mod key;
 mod keyboard;
 #[cfg(test)]
 mod key_tests;
+#[cfg(test)]
+mod lost_file_tests;
 pub mod keys;
 #[cfg(test)]
 mod keys_document;

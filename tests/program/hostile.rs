@@ -1,5 +1,6 @@
 //! Damaged and odd files from outside: a clean message, in time, and nothing left behind.
 
+mod changing_file;
 mod corpus;
 mod hanging_granule;
 mod missing_filter;
