@@ -7,8 +7,8 @@ use std::io::Write;
 use std::path::PathBuf;
 
 use super::Exit;
-use super::inputs::{Reading, reader_program};
-use crate::granule::Granule;
+use super::inputs::Reading;
+use crate::granule::layout_text;
 use description::Description;
 
 /// What was typed.
@@ -19,16 +19,22 @@ pub struct Arguments {
     /// Print JSON instead of text
     #[arg(long)]
     json: bool,
+    /// Print what was found as a layout file, to be edited and given back by --layout
+    #[arg(long, conflicts_with = "json")]
+    as_layout: bool,
     #[command(flatten)]
     reading: Reading,
 }
 
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
-    let limits = arguments.reading.limits();
-    let granule = Granule::open(&reader_program()?, &arguments.file, &limits)?;
-    let description = Description::of(&granule);
+    let granule = arguments.reading.opening()?.open(&arguments.file)?;
     let mut out = std::io::stdout().lock();
+    if arguments.as_layout {
+        out.write_all(layout_text(&granule).as_bytes())?;
+        return Ok(Exit::Done);
+    }
+    let description = Description::of(&granule);
     if arguments.json {
         serde_json::to_writer_pretty(&mut out, &description).map_err(std::io::Error::from)?;
         writeln!(out)?;

@@ -5,11 +5,10 @@ use std::path::{Path, PathBuf};
 
 use serde_json::json;
 
-use super::inputs::{Inputs, Reading, reader_program};
+use super::inputs::{Inputs, Reading};
 use super::{Exit, surroundings};
 use crate::export::{Exported, Exporter, Form, Provenance};
 use crate::flags::Campaign;
-use crate::granule::Granule;
 use crate::system::clean_text;
 
 /// What was typed.
@@ -64,7 +63,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     for problem in &campaign.settings().problems {
         eprintln!("radsieve: {}", clean_text(problem));
     }
-    let program = reader_program()?;
+    let opening = arguments.reading.opening()?;
     let provenance = Provenance {
         program: env!("CARGO_PKG_VERSION").to_owned(),
         now,
@@ -73,12 +72,11 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         ledger_problems: Vec::new(),
     };
     let form = arguments.format.into();
-    let limits = arguments.reading.limits();
     let mut exporter =
-        Exporter::new(&campaign, &program, provenance, form, &arguments.out, &files)?;
+        Exporter::new(&campaign, &opening.program, provenance, form, &arguments.out, &files)?;
     let mut results = Vec::new();
     for file in &files {
-        let granule = Granule::open(&program, file, &limits);
+        let granule = opening.open(file);
         let result = granule.map_err(Into::into).and_then(|granule| exporter.export(&granule));
         let result = result.map_err(|error: crate::export::NotExported| error.to_string());
         tell(file, &result, arguments.json)?;

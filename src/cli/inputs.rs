@@ -11,7 +11,9 @@ use anyhow::Context;
 
 use super::exit::UsageError;
 use super::natural_order::sort_naturally;
+use crate::granule::{ApodiseBy, LayoutFile, Opening};
 use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::system::clean_text;
 
 /// Endings of the files that are taken out of a folder.
 const ENDINGS: [&str; 5] = ["nc", "nc4", "cdf", "h5", "hdf5"];
@@ -30,6 +32,12 @@ pub struct Inputs {
 /// How files are read.
 #[derive(Debug, Clone, Default, clap::Args)]
 pub struct Reading {
+    /// A layout file (TOML) that says which variable is what; `describe --as-layout` prints one
+    #[arg(long, value_name = "FILE")]
+    pub layout: Option<PathBuf>,
+    /// Apodise spectra that are said to be not apodised
+    #[arg(long, value_enum, value_name = "HOW")]
+    pub apodise: Option<Apodise>,
     /// Seconds after which a file that does not answer is given up
     #[arg(long, hide = true, value_name = "SECONDS", value_parser = seconds)]
     pub reader_limit: Option<Duration>,
@@ -54,6 +62,13 @@ fn size(text: &str) -> Result<u64, String> {
     number.checked_mul(1 << shift).ok_or_else(|| "too large".into())
 }
 
+/// The ways of apodising.
+#[derive(Debug, Clone, Copy, clap::ValueEnum)]
+pub enum Apodise {
+    /// Hamming's function, as a running mean over three channels
+    Hamming,
+}
+
 fn seconds(text: &str) -> Result<Duration, String> {
     let seconds: f64 = text.parse().map_err(|_| "not a number".to_owned())?;
     let limit = Duration::try_from_secs_f64(seconds).map_err(|error| error.to_string())?;
@@ -61,8 +76,23 @@ fn seconds(text: &str) -> Result<Duration, String> {
 }
 
 impl Reading {
+    /// How files are opened.
+    ///
+    /// # Errors
+    /// The layout file cannot be read or makes no sense.
+    pub fn opening(&self) -> anyhow::Result<Opening> {
+        let mut layout = match &self.layout {
+            Some(path) => read_layout(path)?,
+            None => LayoutFile::default(),
+        };
+        if let Some(Apodise::Hamming) = self.apodise {
+            layout.apodise = Some(ApodiseBy::Hamming);
+        }
+        Ok(Opening { program: reader_program()?, limits: self.limits(), layout })
+    }
+
     /// The limits of the reader processes.
-    pub fn limits(&self) -> ReadLimits {
+    fn limits(&self) -> ReadLimits {
         let defaults = ReadLimits::default();
         ReadLimits {
             per_request: self.reader_limit.unwrap_or(defaults.per_request),
@@ -72,11 +102,19 @@ impl Reading {
     }
 }
 
+fn read_layout(path: &Path) -> anyhow::Result<LayoutFile> {
+    let shown = clean_text(&path.to_string_lossy());
+    let text = std::fs::read_to_string(path)
+        .with_context(|| format!("cannot read the layout file {shown}"))?;
+    LayoutFile::parse(&text)
+        .map_err(|reason| UsageError(format!("layout file {shown}: {reason}")).into())
+}
+
 /// This program, which is started again as the reader of a file.
 ///
 /// # Errors
 /// The system does not tell where the program lies.
-pub fn reader_program() -> anyhow::Result<ReaderProgram> {
+fn reader_program() -> anyhow::Result<ReaderProgram> {
     let program = std::env::current_exe().context("cannot find this program to read files with")?;
     Ok(ReaderProgram::new(program))
 }

@@ -51,7 +51,7 @@ mod on_screen {
 
     use super::Arguments;
     use crate::cli::exit::{Exit, UsageError};
-    use crate::cli::{inputs, surroundings};
+    use crate::cli::surroundings;
     use crate::flags::Campaign;
     use crate::layers::Expression;
     use crate::tray::Tray;
@@ -76,8 +76,7 @@ mod on_screen {
         let campaign = Campaign::open_or_create(&arguments.campaign)?;
         surroundings::now()?;
         let outside = Outside {
-            reader: inputs::reader_program()?,
-            limits: arguments.reading.limits(),
+            opening: arguments.reading.opening()?,
             campaign,
             author: surroundings::author(),
             program: env!("CARGO_PKG_VERSION").to_owned(),

@@ -10,11 +10,11 @@ use serde_json::{Value, json};
 
 use super::exit::UsageError;
 use super::footprint_at::{footprint, indices};
-use super::inputs::{Inputs, Reading, reader_program};
+use super::inputs::{Inputs, Reading};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
 use crate::flags::{Author, Campaign};
-use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::granule::Opening;
 use crate::review::{Record, Recorded, Review};
 use crate::screening::{Evidence, Rulebook, Screened, Summary, TestEvidence, Verdict};
 use crate::system::{Cancel, clean_text};
@@ -70,20 +70,19 @@ struct Outcome<'r> {
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let files = arguments.inputs.files()?;
     let rulebook = rulebook_or_builtin(arguments.rules.as_deref())?;
-    let program = reader_program()?;
-    let limits = arguments.reading.limits();
+    let opening = arguments.reading.opening()?;
     if let Some(position) = &arguments.explain {
         let position = indices("--explain", position)?;
         let [file] = &files[..] else {
             return Err(UsageError("--explain takes one file".into()).into());
         };
-        return explain(&program, file, &limits, &rulebook, &position, arguments.json);
+        return explain(&opening, file, &rulebook, &position, arguments.json);
     }
     let desk = if arguments.dry_run { None } else { Some(desk(&arguments, &rulebook)?) };
     let mut failed = 0;
     let mut entries = Vec::new();
     for file in &files {
-        let outcome = one_file(&program, file, &limits, &rulebook, desk.as_ref());
+        let outcome = one_file(&opening, file, &rulebook, desk.as_ref());
         failed += usize::from(outcome.is_err());
         tell(file, &outcome, arguments.json)?;
         if arguments.json {
@@ -124,13 +123,12 @@ fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {
 }
 
 fn one_file<'r>(
-    program: &ReaderProgram,
+    opening: &Opening,
     file: &Path,
-    limits: &ReadLimits,
     rulebook: &'r Rulebook,
     desk: Option<&Desk>,
 ) -> anyhow::Result<Outcome<'r>> {
-    let review = Review::open(program, file, limits)?;
+    let review = Review::open(opening, file)?;
     review.read_for(rulebook, &Cancel::new())?;
     let screened = review.screen(rulebook);
     let recorded = match desk {
@@ -251,14 +249,13 @@ fn tests(screened: &Screened<'_>) -> Vec<Value> {
 }
 
 fn explain(
-    program: &ReaderProgram,
+    opening: &Opening,
     file: &Path,
-    limits: &ReadLimits,
     rulebook: &Rulebook,
     position: &[usize],
     json: bool,
 ) -> anyhow::Result<Exit> {
-    let review = Review::open(program, file, limits)?;
+    let review = Review::open(opening, file)?;
     let number = footprint("--explain", review.granule().footprints(), position)?;
     review.read_for(rulebook, &Cancel::new())?;
     let screened = review.screen(rulebook);

@@ -8,7 +8,7 @@ use serde_json::{Map, Value};
 
 use super::Exit;
 use super::footprint_at::{footprint, indices};
-use super::inputs::{Reading, reader_program};
+use super::inputs::Reading;
 use super::table::{cell, present, stream_error};
 use crate::granule::{Band, Granule};
 
@@ -40,8 +40,7 @@ struct BandSpectrum {
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let position = indices("--at", &arguments.at)?;
-    let limits = arguments.reading.limits();
-    let granule = Granule::open(&reader_program()?, &arguments.file, &limits)?;
+    let granule = arguments.reading.opening()?.open(&arguments.file)?;
     let footprint = footprint("--at", granule.footprints(), &position)?;
     let bands = bands(&granule, footprint)?;
     let mut out = BufWriter::new(io::stdout().lock());

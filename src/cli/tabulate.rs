@@ -5,11 +5,10 @@ use std::path::{Path, PathBuf};
 
 use super::Exit;
 use super::exit::{self, UsageError};
-use super::inputs::{Inputs, Reading, reader_program};
+use super::inputs::{Inputs, Reading};
 use super::table::{Form, Heading, write_rows};
-use crate::granule::{Granule, ProblemKind};
+use crate::granule::{Granule, Opening, ProblemKind};
 use crate::layers::{Expression, GranuleNames, Layer, LayerError, channels_needed, evaluate_all};
-use crate::netcdf_files::{ReadLimits, ReaderProgram};
 use crate::system::{Cancel, WriteError, clean_text, write_whole};
 
 /// What was typed.
@@ -42,8 +41,7 @@ struct Plan {
     layers: Vec<Expression>,
     form: Form,
     quiet: bool,
-    program: ReaderProgram,
-    limits: ReadLimits,
+    opening: Opening,
 }
 
 /// How the files fared.
@@ -87,8 +85,7 @@ fn plan(arguments: &Arguments) -> anyhow::Result<Plan> {
         files: arguments.inputs.files()?,
         form: if arguments.json { Form::JsonLines } else { Form::Csv },
         quiet: arguments.quiet,
-        program: reader_program()?,
-        limits: arguments.reading.limits(),
+        opening: arguments.reading.opening()?,
     })
 }
 
@@ -137,8 +134,7 @@ fn one_file(
     heading: &mut Option<Heading>,
     out: &mut dyn Write,
 ) -> Result<(), Failure> {
-    let granule = Granule::open(&plan.program, file, &plan.limits)
-        .map_err(|error| Failure::File(error.into()))?;
+    let granule = plan.opening.open(file).map_err(|error| Failure::File(error.into()))?;
     let refused = heading.as_ref().and_then(|heading| heading.refuses(&granule));
     // Each JSON line names its own dimensions.
     if let (Some(reason), Form::Csv) = (refused, plan.form) {

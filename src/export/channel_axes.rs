@@ -71,6 +71,10 @@ pub(super) fn define_axis(
         .attribute("long_name", format!("wavenumber of the channels of {}", band.name))
         .attribute("standard_name", "sensor_band_central_radiation_wavenumber")
         .attribute("units", "cm-1");
+    let draft = match &band.apodisation {
+        Some(words) => draft.attribute("apodization", words.as_str()),
+        None => draft,
+    };
     writer.variable(&draft)
 }
 
@@ -84,6 +88,7 @@ mod tests {
             dimension: dimension.to_owned(),
             axis_name: axis.map(str::to_owned),
             wavenumbers: wavenumbers.to_vec(),
+            apodisation: None,
         }
     }
 

@@ -17,6 +17,7 @@ pub(super) fn source() -> MaskSource {
         dimension: dimension.to_owned(),
         axis_name: Some(dimension.to_owned()),
         wavenumbers: (0..5).map(|at| first + f64::from(at) * 0.625).collect(),
+        apodisation: (name == "lw").then(|| "Hamming".to_owned()),
     };
     MaskSource {
         name: "lowen_001.nc".to_owned(),

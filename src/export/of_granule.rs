@@ -2,7 +2,7 @@
 
 use super::source::{MaskBand, MaskSource};
 use crate::flags::GranuleIdentity;
-use crate::granule::{Band, Granule, GranuleError, Identity};
+use crate::granule::{Apodisation, Band, Granule, GranuleError, Identity};
 use crate::units::SpectralUnit;
 
 impl MaskSource {
@@ -55,5 +55,7 @@ fn mask_band(band: &Band) -> MaskBand {
         dimension: band.dimension.clone(),
         axis_name: holds_wavenumbers.then(|| name.to_owned()),
         wavenumbers: band.axis.wavenumbers().to_vec(),
+        apodisation: (band.apodisation != Apodisation::Unknown)
+            .then(|| band.apodisation.label().to_owned()),
     }
 }

@@ -11,6 +11,8 @@ pub struct MaskBand {
     pub axis_name: Option<String>,
     /// cm-1, in the granule's order.
     pub wavenumbers: Vec<f64>,
+    /// How the spectra that were judged are apodised, in words; none where nobody knows.
+    pub apodisation: Option<String>,
 }
 
 /// What a mask takes over from its granule.

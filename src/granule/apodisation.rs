@@ -50,12 +50,14 @@ fn from_attributes(attributes: &[Attribute]) -> Option<Apodisation> {
 }
 
 /// The value of an attribute that is about nothing else.
-fn from_words(words: &str) -> Apodisation {
+pub fn from_words(words: &str) -> Apodisation {
     let lower = words.trim().to_lowercase();
     if says_none(&lower) || ["none", "no", "off", "boxcar", "sinc"].contains(&lower.as_str()) {
         Apodisation::None
     } else if lower.contains("hamming") {
         Apodisation::Hamming
+    } else if ["unknown", ""].contains(&lower.as_str()) {
+        Apodisation::Unknown
     } else {
         Apodisation::Other(clean_text(words.trim()))
     }

@@ -37,6 +37,8 @@ pub enum Apodisation {
     None,
     /// By Hamming's function.
     Hamming,
+    /// Not in the file; by Hamming's function as values are handed on, for it was asked for.
+    HammingApplied,
     /// As the file says, in its words (safe to show).
     Other(String),
     /// The file does not say.
@@ -49,6 +51,7 @@ impl Apodisation {
         match self {
             Self::None => "none",
             Self::Hamming => "Hamming",
+            Self::HammingApplied => "Hamming, applied on request",
             Self::Other(words) => words,
             Self::Unknown => "unknown",
         }
@@ -76,7 +79,8 @@ pub struct Band {
     pub unit_text: String,
     /// How the spectra are apodised.
     pub apodisation: Apodisation,
-    /// For each channel whether the file gives it up as bad; such channels are in no layer.
+    /// For each channel whether no layer may use it: it is given up as bad, or apodising leaves it
+    /// without a value.
     pub bad: Vec<bool>,
 }
 

@@ -9,6 +9,7 @@ use super::decoder::Decoder;
 use super::footprints::FootprintGrid;
 use super::problem::Problem;
 use crate::netcdf_files::{Samples, with_values};
+use crate::spectral::Hamming3;
 use crate::units::TemperatureUnit;
 
 /// Whether values have been read yet.
@@ -38,8 +39,16 @@ struct BandCube {
     rows_per_slab: usize,
     decoder: Decoder,
     scale: Scale,
+    apodise: Option<Hamming3>,
     slabs: Vec<OnceLock<Samples>>,
     undeclared_fills: AtomicUsize,
+}
+
+/// How a band's values are stored and handed on.
+pub(super) struct BandStorage {
+    pub decoder: Decoder,
+    pub rows_per_slab: usize,
+    pub apodise: Option<Hamming3>,
 }
 
 /// From the file's unit to the working unit.
@@ -72,22 +81,23 @@ impl Cube {
     pub(super) fn new(
         footprints: &FootprintGrid,
         bands: &[Band],
-        storage: Vec<(Decoder, usize)>,
+        storage: Vec<BandStorage>,
     ) -> Self {
         let rows = footprints.lengths().first().copied().unwrap_or(0);
-        let band_cube = |(band, (decoder, rows_per_slab)): (&Band, (Decoder, usize))| BandCube {
+        let band_cube = |(band, storage): (&Band, BandStorage)| BandCube {
             name: band.name.clone(),
             channels: band.channels(),
             rows,
-            rows_per_slab,
-            decoder,
+            rows_per_slab: storage.rows_per_slab,
+            decoder: storage.decoder,
+            apodise: storage.apodise,
             scale: match &band.quantity {
                 Quantity::Radiance(unit) => Scale::Factors(
                     band.axis.wavenumbers().iter().map(|&nu| unit.factor_at(nu)).collect(),
                 ),
                 Quantity::BrightnessTemperature(unit) => Scale::Temperature(*unit),
             },
-            slabs: (0..rows.div_ceil(rows_per_slab)).map(|_| OnceLock::new()).collect(),
+            slabs: (0..rows.div_ceil(storage.rows_per_slab)).map(|_| OnceLock::new()).collect(),
             undeclared_fills: AtomicUsize::new(0),
         };
         Self {
@@ -250,6 +260,16 @@ impl Cube {
 }
 
 impl BandCube {
+    /// A channel's value out of one footprint's stored values.
+    #[inline]
+    fn value(&self, channel: usize, stored: impl Fn(usize) -> f64) -> f64 {
+        let plain = |channel| self.scale.apply(channel, self.decoder.decode(stored(channel)));
+        match &self.apodise {
+            Some(mean) => mean.at(channel, plain),
+            None => plain(channel),
+        }
+    }
+
     #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     fn decode_spectrum(&self, samples: &Samples, begin: usize, out: &mut Vec<f64>) {
         out.reserve(self.channels);
@@ -257,9 +277,8 @@ impl BandCube {
             samples,
             values => {
                 let spectrum = &values[begin..begin + self.channels];
-                out.extend(spectrum.iter().enumerate().map(|(channel, &value)| {
-                    self.scale.apply(channel, self.decoder.decode(value as f64))
-                }));
+                let stored = |channel: usize| spectrum[channel] as f64;
+                out.extend((0..self.channels).map(|channel| self.value(channel, stored)));
             },
             _strings => out.resize(self.channels, f64::NAN)
         );
@@ -282,9 +301,9 @@ impl BandCube {
             values => {
                 let spectra = values[first * self.channels..].chunks_exact(self.channels);
                 for (at, spectrum) in place.zip(spectra) {
+                    let stored = |channel: usize| spectrum[channel] as f64;
                     for (row, &channel) in channels.iter().enumerate() {
-                        let value = self.decoder.decode(spectrum[channel] as f64);
-                        out[row * length + at] = self.scale.apply(channel, value);
+                        out[row * length + at] = self.value(channel, stored);
                     }
                 }
             },

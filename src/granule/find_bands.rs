@@ -1,6 +1,8 @@
 //! Which variables of a file are radiances or brightness temperatures.
 
 use super::band::Quantity;
+use super::layout_file::{BandEntry, LayoutFile};
+use super::named_variable::named_variable;
 use super::problem::Problem;
 use super::spectral_axis::{self, AxisCandidate};
 use crate::netcdf_files::{FileIndex, Variable};
@@ -15,8 +17,10 @@ pub struct BandCandidate {
     pub quantity: Quantity,
     /// Axes that one of its dimensions may have, the best first.
     pub axes: Vec<AxisCandidate>,
-    /// Whether its standard name says what it is.
+    /// Whether its standard name or the layout file says what it is.
     pub named: bool,
+    /// What the layout file says of it; nothing where it was found without.
+    pub said: Option<BandEntry>,
 }
 
 /// What was found: candidates, and variables that look like bands but cannot be used, with the reason.
@@ -71,7 +75,13 @@ pub fn search(index: &FileIndex, problems: &mut Vec<Problem>) -> Search {
         match quantity(variable, named.as_deref(), !axes.is_empty(), problems) {
             Ok(Some(quantity)) if !axes.is_empty() => {
                 let named = named.is_some();
-                found.candidates.push(BandCandidate { variable: place, quantity, axes, named });
+                found.candidates.push(BandCandidate {
+                    variable: place,
+                    quantity,
+                    axes,
+                    named,
+                    said: None,
+                });
             }
             Ok(Some(_)) => found.unusable.push(format!(
                 "`{}` has no spectral axis: a 1-D variable on one of its dimensions ({}) with units such as cm-1, m-1, um or nm",
@@ -84,6 +94,62 @@ pub fn search(index: &FileIndex, problems: &mut Vec<Problem>) -> Search {
     }
     found.candidates.sort_by_key(|candidate| !candidate.named);
     found
+}
+
+/// The bands that a layout file names, in its order.
+///
+/// # Errors
+/// It names what is not there or cannot be used; in words.
+pub fn said(
+    index: &FileIndex,
+    layout: &LayoutFile,
+    problems: &mut Vec<Problem>,
+) -> Result<Search, String> {
+    let candidate = |entry: &BandEntry| {
+        let place = named_variable(index, &entry.variable)?;
+        let variable = &index.variables[place];
+        said_candidate(index, place, entry, problems)
+            .map_err(|reason| format!("band `{}`: {reason}", variable.path))
+    };
+    let candidates = layout.bands.iter().map(candidate).collect::<Result<_, _>>()?;
+    Ok(Search { candidates, unusable: Vec::new() })
+}
+
+fn said_candidate(
+    index: &FileIndex,
+    place: usize,
+    entry: &BandEntry,
+    problems: &mut Vec<Problem>,
+) -> Result<BandCandidate, String> {
+    let variable = &index.variables[place];
+    if !variable.kind.is_number() || variable.dimensions.len() < 2 {
+        return Err("no numbers over two or more dimensions".into());
+    }
+    let axes = match spectral_axis::said(index, variable, entry)? {
+        Some(axis) => vec![axis],
+        None => spectral_axis::candidates(index, variable),
+    };
+    if axes.is_empty() {
+        return Err("it has no spectral axis that can be found; say `axis`".into());
+    }
+    let quantity = match &entry.unit {
+        Some(unit) => Some(quantity_of_unit(unit)?),
+        None => {
+            let named = measured_standard_name(variable);
+            quantity(variable, named.as_deref(), true, problems)?
+        }
+    };
+    let quantity = quantity.ok_or("what its values are can't be told; say `unit`")?;
+    Ok(BandCandidate { variable: place, quantity, axes, named: true, said: Some(entry.clone()) })
+}
+
+/// A spectral radiance or a temperature, by the unit alone.
+pub fn quantity_of_unit(unit: &str) -> Result<Quantity, String> {
+    if let Ok(unit) = TemperatureUnit::parse(unit) {
+        return Ok(Quantity::BrightnessTemperature(unit));
+    }
+    let unit = RadianceUnit::parse(unit);
+    unit.map(Quantity::Radiance).map_err(|error| format!("{error}; or K or degC for temperatures"))
 }
 
 /// The standard name, if it is that of a measured spectrum.
@@ -203,7 +269,7 @@ pub fn band_names(variables: &[&Variable]) -> Vec<String> {
 }
 
 /// Letters, digits and underscores, a letter first (CF conventions 2.3).
-fn valid_name(name: &str) -> String {
+pub fn valid_name(name: &str) -> String {
     let plain = |character: char| if character.is_ascii_alphanumeric() { character } else { '_' };
     let name: String = name.chars().map(plain).take(60).collect();
     let name = name.trim_matches('_');

@@ -43,6 +43,13 @@ impl FootprintDimensions {
 }
 
 impl Spread {
+    /// For a variable that is said to lie over the footprints: its dimensions are theirs, in their
+    /// order, where the lengths agree.
+    pub fn by_lengths(grid: &FootprintGrid, lengths: &[usize]) -> Option<Self> {
+        let agree = grid.lengths() == lengths;
+        agree.then(|| Self { along: (0..lengths.len()).collect(), guessed: true })
+    }
+
     /// Whether there is one value for each footprint.
     pub fn is_full(&self, grid: &FootprintGrid) -> bool {
         self.along.len() == grid.lengths().len()

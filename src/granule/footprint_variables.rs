@@ -77,11 +77,13 @@ impl FootprintVariable {
     }
 }
 
-/// All variables of the footprints but the bands themselves, in the file's order.
+/// All variables of the footprints but the bands themselves, in the file's order. `quality` are those
+/// that speak of quality, where that is known; otherwise it is told by names and attributes.
 pub fn find(
     index: &FileIndex,
     dimensions: &FootprintDimensions,
     bands: &[&Variable],
+    quality: Option<&[usize]>,
     is_geolocation: impl Fn(usize) -> bool,
 ) -> Vec<FootprintVariable> {
     let ancillary: Vec<String> =
@@ -98,7 +100,10 @@ pub fn find(
             let meanings = meanings(variable);
             let role = if is_geolocation(place) {
                 VariableRole::Geolocation
-            } else if speaks_of_quality(variable, !meanings.is_empty(), is_ancillary(variable)) {
+            } else if quality.map_or_else(
+                || speaks_of_quality(variable, !meanings.is_empty(), is_ancillary(variable)),
+                |quality| quality.contains(&place),
+            ) {
                 VariableRole::Quality
             } else {
                 VariableRole::Other

@@ -1,12 +1,15 @@
 //! Where the footprints lie, when they were seen, and how they are seen and lit.
 
 use super::decoder::Decoder;
-use super::footprint_dimensions::FootprintDimensions;
+use super::error::GranuleError;
+use super::footprint_dimensions::{FootprintDimensions, Spread};
 use super::footprints::FootprintGrid;
 use super::geolocation_fields::{Evidence, FIELDS, Field, Kind, evidence};
+use super::layout_file::LayoutFile;
+use super::named_variable::named_variable;
 use super::problem::Problem;
 use super::time::{TimeScale, TimeUnit};
-use crate::netcdf_files::{FileReader, ReadError, Variable};
+use crate::netcdf_files::{FileIndex, FileReader, ReadError, Variable};
 use crate::units::AngleUnit;
 
 /// One value for each footprint, as far as the file has it. Missing values are NaN.
@@ -65,26 +68,29 @@ pub struct GeolocationSource {
 /// Finds and reads all fields that the file has; the others become problems.
 ///
 /// # Errors
-/// The whole file cannot be read any more.
+/// The whole file cannot be read any more, or the layout file names what is not there.
 pub fn read(
     reader: &FileReader,
     dimensions: &FootprintDimensions,
     grid: &FootprintGrid,
+    layout: &LayoutFile,
     problems: &mut Vec<Problem>,
-) -> Result<Geolocation, ReadError> {
+) -> Result<Geolocation, GranuleError> {
     let mut found = Geolocation::default();
     for field in &FIELDS {
-        let values = match find(reader, dimensions, grid, field) {
-            Some((place, how)) => read_field(
-                reader,
-                dimensions,
-                grid,
-                field,
-                place,
-                how,
-                &mut found.sources,
-                problems,
-            )?,
+        let (variable, unit) = layout.field(field.name);
+        let origin = match variable {
+            Some("") => None,
+            Some(name) => Some(said(reader.index(), dimensions, grid, name).map_err(|reason| {
+                let why = format!("does not fit the layout file: {}: {reason}", field.name);
+                GranuleError::not_usable(reader.path(), why)
+            })?),
+            None => find(reader.index(), dimensions, grid, field),
+        };
+        let values = match origin {
+            Some(origin) => {
+                read_field(reader, grid, field, origin, unit, &mut found.sources, problems)?
+            }
             None => {
                 problems.push(Problem::missing(&format!("no `{}`", field.name), "", field.cost));
                 None
@@ -104,38 +110,64 @@ pub fn read(
     Ok(found)
 }
 
+/// The variable of a field.
+struct FieldOrigin {
+    place: usize,
+    /// What speaks for it; nothing more is needed where the layout file says so.
+    evidence: Option<Evidence>,
+    spread: Spread,
+}
+
+/// The variable that the layout file names.
+fn said(
+    index: &FileIndex,
+    dimensions: &FootprintDimensions,
+    grid: &FootprintGrid,
+    name: &str,
+) -> Result<FieldOrigin, String> {
+    let place = named_variable(index, name)?;
+    let variable = &index.variables[place];
+    if !variable.kind.is_number() {
+        return Err(format!("`{}` holds no numbers", variable.path));
+    }
+    let mut spread = dimensions
+        .spread(index, variable)
+        .or_else(|| Spread::by_lengths(grid, &index.lengths(variable)))
+        .ok_or_else(|| format!("`{}` does not lie over the footprints", variable.path))?;
+    // Said outright, so no guess.
+    spread.guessed = false;
+    Ok(FieldOrigin { place, evidence: None, spread })
+}
+
 fn find(
-    reader: &FileReader,
+    index: &FileIndex,
     dimensions: &FootprintDimensions,
     grid: &FootprintGrid,
     field: &Field,
-) -> Option<(usize, Evidence)> {
-    let index = reader.index();
+) -> Option<FieldOrigin> {
     let candidates = index.variables.iter().enumerate().filter_map(|(place, variable)| {
         let spread = dimensions.spread(index, variable).filter(|_| variable.kind.is_number())?;
         let evidence = evidence(field, variable)?;
         // Full fields before those that are repeated, own dimensions before look-alikes.
-        Some(((evidence, !spread.is_full(grid), spread.guessed, place), (place, evidence)))
+        let order = (evidence, !spread.is_full(grid), spread.guessed, place);
+        Some((order, FieldOrigin { place, evidence: Some(evidence), spread }))
     });
     candidates.min_by_key(|(order, _)| *order).map(|(_, found)| found)
 }
 
-#[allow(clippy::too_many_arguments)] // One call, and each argument is what its name says.
 fn read_field(
     reader: &FileReader,
-    dimensions: &FootprintDimensions,
     grid: &FootprintGrid,
     field: &Field,
-    place: usize,
-    evidence: Evidence,
+    origin: FieldOrigin,
+    said_unit: Option<&str>,
     sources: &mut Vec<GeolocationSource>,
     problems: &mut Vec<Problem>,
 ) -> Result<Option<Vec<f64>>, ReadError> {
-    let index = reader.index();
-    let variable = &index.variables[place];
-    let Some(spread) = dimensions.spread(index, variable) else { return Ok(None) };
+    let FieldOrigin { place, evidence, spread } = origin;
+    let variable = &reader.index().variables[place];
     let path = &variable.path;
-    if evidence == Evidence::Name {
+    if evidence == Some(Evidence::Name) {
         let what = format!("`{}` is taken for {} by its name", path, field.name);
         problems.push(Problem::guess(&what, path, "a standard_name would say it"));
     }
@@ -145,7 +177,10 @@ fn read_field(
         );
         problems.push(Problem::guess(&what, path, ""));
     }
-    let units = variable.text("units").unwrap_or_default();
+    let units = match said_unit {
+        Some(unit) => unit.to_owned(),
+        None => variable.text("units").unwrap_or_default(),
+    };
     let convert = match conversion(field.kind, variable, &units, problems) {
         Ok(convert) => convert,
         Err(reason) => {

@@ -14,6 +14,7 @@ use super::footprints::FootprintGrid;
 use super::geolocation::Geolocation;
 use super::identity::Identity;
 use super::layout::Layout;
+use super::opening::Opening;
 use super::problem::Problem;
 use super::side_by_side::side_by_side;
 use crate::netcdf_files::{
@@ -43,6 +44,8 @@ pub struct Granule {
 pub(super) struct BandSource {
     pub variable: usize,
     pub layout: Layout,
+    /// The channels given up as bad, before apodising took those beside them as well.
+    pub bad: Vec<bool>,
 }
 
 /// How far reading has come.
@@ -65,7 +68,7 @@ impl Granule {
         path: &Path,
         limits: &ReadLimits,
     ) -> Result<Self, GranuleError> {
-        super::open::open(FileReader::open(program, path, limits)?, memory_budget(limits))
+        Opening { limits: limits.clone(), ..Opening::new(program.clone()) }.open(path)
     }
 
     /// The file as it was named.
@@ -348,7 +351,7 @@ impl Granule {
 
 /// What the values of a file may take: most of what is free where nothing is said. The rest is for the
 /// layers made of them.
-fn memory_budget(limits: &ReadLimits) -> u64 {
+pub(super) fn memory_budget(limits: &ReadLimits) -> u64 {
     let most = |free: u64| free / 4 * 3;
     limits.values.or_else(|| free_memory().map(most)).unwrap_or(u64::MAX)
 }

@@ -5,6 +5,7 @@
 //! **Never** judges the data.
 
 mod apodisation;
+mod apodise;
 mod band;
 mod channels;
 mod cube;
@@ -19,7 +20,11 @@ mod geolocation_fields;
 mod granule_file;
 mod identity;
 mod layout;
+mod layout_file;
+mod layout_text;
+mod named_variable;
 mod open;
+mod opening;
 mod problem;
 mod side_by_side;
 mod slabs;
@@ -36,8 +41,13 @@ pub use footprints::FootprintGrid;
 pub use geolocation::{Geolocation, GeolocationSource};
 pub use granule_file::{Granule, Progress};
 pub use identity::Identity;
+pub use layout_file::{ApodiseBy, BandEntry, LayoutFile};
+pub use layout_text::layout_text;
+pub use opening::Opening;
 pub use problem::{Problem, ProblemKind};
 pub use time::{TimeScale, TimeUnit};
 
+#[cfg(test)]
+mod layout_tests;
 #[cfg(test)]
 mod tests;

@@ -3,8 +3,9 @@
 use std::sync::{Arc, OnceLock};
 
 use super::apodisation;
+use super::apodise;
 use super::band::Band;
-use super::cube::Cube;
+use super::cube::{BandStorage, Cube};
 use super::decoder::Decoder;
 use super::error::{GranuleError, Setback};
 use super::find_bands::{self, BandCandidate, Search};
@@ -14,6 +15,8 @@ use super::footprints::FootprintGrid;
 use super::geolocation;
 use super::granule_file::{BandSource, Granule};
 use super::layout::{Layout, Role};
+use super::layout_file::{ApodiseBy, LayoutFile};
+use super::named_variable::{named_dimension, named_variable};
 use super::problem::Problem;
 use super::slabs::rows_per_slab;
 use super::spectral_axis;
@@ -22,16 +25,21 @@ use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadFault, Variable}
 /// More footprints than any granule has; the screen and the layers hold numbers for each.
 const MOST_FOOTPRINTS: usize = 20_000_000;
 
-/// Understands an open file, whose values may take `budget` bytes of memory.
-pub fn open(reader: FileReader, budget: u64) -> Result<Granule, GranuleError> {
+/// Understands an open file, whose values may take `budget` bytes of memory, with what the layout
+/// file says of it.
+pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Granule, GranuleError> {
     let index = reader.index();
     let mut problems: Vec<Problem> = index
         .unreadable
         .iter()
         .map(|what| Problem::note("cannot be read", what, "left out"))
         .collect();
-    let mut search = find_bands::search(index, &mut problems);
-    let chosen = choose(&reader, &mut search, &mut problems)?;
+    let mut search = match layout.bands.is_empty() {
+        true => find_bands::search(index, &mut problems),
+        false => find_bands::said(index, layout, &mut problems)
+            .map_err(|reason| contradicted(&reader, &reason))?,
+    };
+    let chosen = choose(&reader, &mut search, layout, &mut problems)?;
     let dimensions = chosen.dimensions;
     let grid = grid(index, &dimensions);
     check_size(&reader, &grid)?;
@@ -50,15 +58,29 @@ pub fn open(reader: FileReader, budget: u64) -> Result<Granule, GranuleError> {
             return Err(ReadError::new(reader.path(), fault).into());
         }
         let rows = rows_per_slab(index, variable, &source.layout);
-        storage.push((Decoder::of(variable).with_undeclared_fill(), rows));
-        band.name = name;
+        let decoder = Decoder::of(variable).with_undeclared_fill();
+        let apodise = match layout.apodise {
+            Some(ApodiseBy::Hamming) => apodise::hamming(&mut band, &mut problems),
+            None => None,
+        };
+        storage.push(BandStorage { decoder, rows_per_slab: rows, apodise });
+        if band.name.is_empty() {
+            band.name = name;
+        }
         bands.push(band);
         sources.push(source);
     }
-    let geolocation = geolocation::read(&reader, &dimensions, &grid, &mut problems)?;
+    let geolocation = geolocation::read(&reader, &dimensions, &grid, layout, &mut problems)?;
+    let quality = said_quality(index, &dimensions, layout)
+        .map_err(|reason| contradicted(&reader, &reason))?;
     let is_geolocation = |place| geolocation.sources.iter().any(|source| source.place == place);
-    let footprint_variables =
-        footprint_variables::find(index, &dimensions, &variables, is_geolocation);
+    let footprint_variables = footprint_variables::find(
+        index,
+        &dimensions,
+        &variables,
+        quality.as_deref(),
+        is_geolocation,
+    );
     let cube = Arc::new(Cube::new(&grid, &bands, storage));
     Ok(Granule {
         footprints: grid,
@@ -75,6 +97,28 @@ pub fn open(reader: FileReader, budget: u64) -> Result<Granule, GranuleError> {
     })
 }
 
+/// The quality variables that the layout file names; nothing where it leaves that to the file.
+fn said_quality(
+    index: &FileIndex,
+    dimensions: &FootprintDimensions,
+    layout: &LayoutFile,
+) -> Result<Option<Vec<usize>>, String> {
+    let Some(names) = &layout.quality else { return Ok(None) };
+    let place = |name: &String| {
+        let place = named_variable(index, name).map_err(|error| format!("quality: {error}"))?;
+        match dimensions.spread(index, &index.variables[place]) {
+            Some(_) => Ok(place),
+            None => Err(format!("quality: `{name}` does not lie over the footprints")),
+        }
+    };
+    names.iter().map(place).collect::<Result<_, String>>().map(Some)
+}
+
+/// The layout file and the file do not agree.
+fn contradicted(reader: &FileReader, reason: &str) -> GranuleError {
+    GranuleError::not_usable(reader.path(), format!("does not fit the layout file: {reason}"))
+}
+
 /// Bands that lie over the same footprints.
 struct Chosen {
     dimensions: FootprintDimensions,
@@ -85,6 +129,7 @@ struct Chosen {
 fn choose(
     reader: &FileReader,
     search: &mut Search,
+    layout: &LayoutFile,
     problems: &mut Vec<Problem>,
 ) -> Result<Chosen, GranuleError> {
     let index = reader.index();
@@ -99,9 +144,17 @@ fn choose(
         }
         match settle(reader, &candidate, problems) {
             Ok(Some((spectral, band))) => {
-                join(index, &mut chosen, &candidate, spectral, band, problems)
+                join(index, &mut chosen, &candidate, spectral, band, layout, problems)
+                    .map_err(|reason| contradicted(reader, &reason))?;
+            }
+            Ok(None) if candidate.said.is_some() => {
+                let reason = format!("band `{}` has no spectral axis", variable.path);
+                return Err(contradicted(reader, &reason));
             }
             Ok(None) => search.unusable.push(format!("`{}` has no spectral axis", variable.path)),
+            Err(Setback::Variable(reason)) if candidate.said.is_some() => {
+                return Err(contradicted(reader, &format!("band `{}`: {reason}", variable.path)));
+            }
             Err(Setback::Variable(reason)) => {
                 search.unusable.push(format!("`{}`: {reason}", variable.path));
             }
@@ -113,8 +166,10 @@ fn choose(
             for unusable in &search.unusable {
                 problems.push(Problem::note(&format!("left out: {unusable}"), "", ""));
             }
-            // The surest candidates came first; bands are listed in the file's order.
-            chosen.bands.sort_by_key(|(source, _)| source.variable);
+            // The surest candidates came first; bands are listed in the file's order, or the layout's.
+            if layout.bands.is_empty() {
+                chosen.bands.sort_by_key(|(source, _)| source.variable);
+            }
             Ok(chosen)
         }
         None => {
@@ -141,16 +196,27 @@ fn settle(
                 format!("`{}` is taken for its spectral axis by its unit", axis_variable.path);
             problems.push(Problem::guess(&what, &variable.path, "a standard_name would say it"));
         }
+        if axis_candidate.look_alike {
+            let what = format!(
+                "`{}` is taken for its spectral axis by the name and length of its dimension",
+                axis_variable.path
+            );
+            problems.push(Problem::guess(&what, &variable.path, "a layout file would say it"));
+        }
+        let said = candidate.said.clone().unwrap_or_default();
         let band = Band {
-            name: String::new(),
+            name: said.name.as_deref().map(find_bands::valid_name).unwrap_or_default(),
             variable: variable.path.clone(),
             axis_variable: axis_variable.path.clone(),
             axis_unit: unit,
             dimension: index.dimensions[axis_candidate.dimension].name.clone(),
             quantity: candidate.quantity.clone(),
-            unit_text: variable.text("units").unwrap_or_default(),
-            apodisation: apodisation::find(index, variable, axis_variable, problems),
-            bad: vec![false; axis.len()],
+            unit_text: said.unit.or_else(|| variable.text("units")).unwrap_or_default(),
+            apodisation: match &said.apodisation {
+                Some(words) => apodisation::from_words(words),
+                None => apodisation::find(index, variable, axis_variable, problems),
+            },
+            bad: bad_channels(axis.len(), said.bad_channels.as_deref().unwrap_or_default())?,
             axis,
         };
         return Ok(Some((axis_candidate.dimension, band)));
@@ -158,44 +224,99 @@ fn settle(
     Ok(None)
 }
 
+/// For each channel whether it is among the ones listed.
+fn bad_channels(channels: usize, listed: &[usize]) -> Result<Vec<bool>, Setback> {
+    let mut bad = vec![false; channels];
+    for &channel in listed {
+        let Some(place) = bad.get_mut(channel) else {
+            let reason = format!("bad_channels: {channel}, but there are {channels} channels");
+            return Err(Setback::Variable(reason));
+        };
+        *place = true;
+    }
+    Ok(bad)
+}
+
 /// Adds a band to the chosen ones, or says why it is left out.
+///
+/// # Errors
+/// It does not fit what the layout file says; in words.
 fn join(
     index: &FileIndex,
     chosen: &mut Option<Chosen>,
     candidate: &BandCandidate,
     spectral: usize,
     band: Band,
+    layout_file: &LayoutFile,
     problems: &mut Vec<Problem>,
-) {
+) -> Result<(), String> {
     let variable = &index.variables[candidate.variable];
     let footprints: Vec<usize> =
         variable.dimensions.iter().copied().filter(|&dimension| dimension != spectral).collect();
     let Some(chosen) = chosen else {
-        let layout = layout(index, variable, spectral, &FootprintDimensions(footprints.clone()));
-        if let Some(layout) = layout {
-            let source = BandSource { variable: candidate.variable, layout };
-            let dimensions = FootprintDimensions(footprints);
+        let dimensions = match &layout_file.footprint_dimensions {
+            Some(names) => said_dimensions(index, &footprints, names)?,
+            None => FootprintDimensions(footprints),
+        };
+        if let Some(layout) = layout(index, variable, spectral, &dimensions) {
+            let source = BandSource { variable: candidate.variable, layout, bad: band.bad.clone() };
             *chosen = Some(Chosen { dimensions, bands: vec![(source, band)] });
         }
-        return;
+        return Ok(());
     };
     let same_axis = |(_, other): &&(BandSource, Band)| other.axis_variable == band.axis_variable;
-    if let Some((_, other)) = chosen.bands.iter().find(same_axis) {
+    let twice = chosen.bands.iter().find(same_axis).filter(|_| candidate.said.is_none());
+    if let Some((_, other)) = twice {
         let what = format!("`{}` has the same channels", other.variable);
         problems.push(Problem::note(
             &what,
             &variable.path,
             "the first one was taken, this one left out",
         ));
-        return;
+        return Ok(());
     }
     match layout(index, variable, spectral, &chosen.dimensions) {
         Some(layout) => {
-            chosen.bands.push((BandSource { variable: candidate.variable, layout }, band));
+            if footprints.iter().any(|own| !chosen.dimensions.0.contains(own)) {
+                let what = "laid over the footprints by the names and lengths of its dimensions";
+                problems.push(Problem::guess(what, &variable.path, ""));
+            }
+            chosen.bands.push((
+                BandSource { variable: candidate.variable, layout, bad: band.bad.clone() },
+                band,
+            ));
+        }
+        None if candidate.said.is_some() => {
+            let names: Vec<&str> = index.dimension_names(variable);
+            return Err(format!(
+                "band `{}` lies over {}, not over the footprints of the first band",
+                variable.path,
+                names.join(", ")
+            ));
         }
         None => {
             let what = "its footprint dimensions are not those of the other bands";
             problems.push(Problem::note(what, &variable.path, "left out"));
+        }
+    }
+    Ok(())
+}
+
+/// The footprint dimensions in the order that the layout file names them in.
+fn said_dimensions(
+    index: &FileIndex,
+    footprints: &[usize],
+    names: &[String],
+) -> Result<FootprintDimensions, String> {
+    let named = |name: &String| named_dimension(index, footprints, name);
+    let places = names.iter().map(named).collect::<Result<Vec<usize>, String>>();
+    let places = places.map_err(|error| format!("footprint_dimensions: {error}"))?;
+    match footprints.iter().all(|own| places.contains(own)) && places.len() == footprints.len() {
+        true => Ok(FootprintDimensions(places)),
+        false => {
+            let own: Vec<&str> =
+                footprints.iter().map(|&own| index.dimensions[own].name.as_str()).collect();
+            Err(format!("footprint_dimensions: must name each of {} once", own.join(", ")))
         }
     }
 }

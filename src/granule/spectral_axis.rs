@@ -1,6 +1,8 @@
 //! Which dimension of a variable is spectral, and which variable says where its channels lie.
 
 use super::error::Setback;
+use super::layout_file::BandEntry;
+use super::named_variable::{named_dimension, named_variable};
 use super::problem::Problem;
 use crate::netcdf_files::{FileIndex, FileReader, Variable};
 use crate::spectral::ChannelAxis;
@@ -17,6 +19,8 @@ pub struct AxisCandidate {
     pub unit: Option<SpectralUnit>,
     /// How sure it is: the smaller the better.
     pub rank: u8,
+    /// Whether its own dimension is another one of the same name and length, in another group.
+    pub look_alike: bool,
 }
 
 const STANDARD_NAMES: [&str; 6] = [
@@ -41,18 +45,94 @@ pub fn candidates(index: &FileIndex, variable: &Variable) -> Vec<AxisCandidate> 
     let mut found: Vec<AxisCandidate> = Vec::new();
     for (place, axis) in index.variables.iter().enumerate() {
         let &[dimension] = axis.dimensions.as_slice() else { continue };
-        if !axis.kind.is_number() || !variable.dimensions.contains(&dimension) {
+        let Some((own, look_alike)) = alike(index, variable, dimension) else { continue };
+        if !axis.kind.is_number() {
             continue;
         }
         let unit = axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok());
         if let Some(rank) = rank(index, axis, dimension, unit, &named) {
-            found.push(AxisCandidate { dimension, variable: place, unit, rank });
+            found.push(AxisCandidate { dimension: own, variable: place, unit, rank, look_alike });
         }
     }
     // The last dimension first where two are as sure; stable, so then by the file's order.
     let depth = |dimension| variable.dimensions.iter().rposition(|&own| own == dimension);
-    found.sort_by_key(|candidate| (candidate.rank, std::cmp::Reverse(depth(candidate.dimension))));
+    found.sort_by_key(|candidate| {
+        let deepest = std::cmp::Reverse(depth(candidate.dimension));
+        (candidate.look_alike, candidate.rank, deepest)
+    });
     found
+}
+
+/// The dimension of a variable that `dimension` is, or that it is like by name and length.
+fn alike(index: &FileIndex, variable: &Variable, dimension: usize) -> Option<(usize, bool)> {
+    if variable.dimensions.contains(&dimension) {
+        return Some((dimension, false));
+    }
+    let other = &index.dimensions[dimension];
+    let same = |own: &usize| {
+        let own = &index.dimensions[*own];
+        own.name == other.name && own.length == other.length
+    };
+    variable.dimensions.iter().copied().find(same).map(|own| (own, true))
+}
+
+/// The axis that a layout file gives a variable; none where it leaves that to the file.
+///
+/// # Errors
+/// It names what is not there, or does not tell which dimension is meant; in words.
+pub fn said(
+    index: &FileIndex,
+    variable: &Variable,
+    entry: &BandEntry,
+) -> Result<Option<AxisCandidate>, String> {
+    let unit = match entry.axis_unit.as_deref().map(SpectralUnit::parse) {
+        Some(unit) => Some(unit.map_err(|error| format!("axis_unit: {error}"))?),
+        None => None,
+    };
+    let Some(name) = &entry.axis else {
+        return match unit {
+            Some(_) => Err("axis_unit without `axis`: say the variable, too".into()),
+            None => Ok(None),
+        };
+    };
+    let place = named_variable(index, name).map_err(|error| format!("axis: {error}"))?;
+    let axis = &index.variables[place];
+    let &[own] = axis.dimensions.as_slice() else {
+        return Err(format!("axis: `{}` has not one dimension", axis.path));
+    };
+    let dimension = match &entry.axis_dimension {
+        Some(name) => named_dimension(index, &variable.dimensions, name)
+            .map_err(|error| format!("axis_dimension: {error}"))?,
+        None => meant(index, variable, own).ok_or_else(|| {
+            format!(
+                "axis: which dimension of `{}` `{}` belongs to is not plain; say axis_dimension",
+                variable.path, axis.path
+            )
+        })?,
+    };
+    if index.dimensions[dimension].length != index.dimensions[own].length {
+        return Err(format!(
+            "axis: `{}` has {} values, but `{}` has {} along `{}`",
+            axis.path,
+            index.dimensions[own].length,
+            variable.path,
+            index.dimensions[dimension].length,
+            index.dimensions[dimension].name
+        ));
+    }
+    let unit = unit.or_else(|| axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok()));
+    Ok(Some(AxisCandidate { dimension, variable: place, unit, rank: 0, look_alike: false }))
+}
+
+/// The dimension of a variable that an axis over `own` belongs to: the same, its like, or the only
+/// one of that length.
+fn meant(index: &FileIndex, variable: &Variable, own: usize) -> Option<usize> {
+    if let Some((dimension, _)) = alike(index, variable, own) {
+        return Some(dimension);
+    }
+    let length = |dimension: usize| index.dimensions[dimension].length;
+    let mut same = variable.dimensions.iter().copied().filter(|&one| length(one) == length(own));
+    same.next().filter(|_| same.next().is_none())
 }
 
 /// How sure it is that a one-dimensional variable is a spectral axis; none if nothing speaks for it.

@@ -10,12 +10,12 @@ use crate::spectral::planck;
 use crate::system::Cancel;
 
 /// A file in a folder that vanishes with it.
-struct File {
+pub(super) struct File {
     _folder: tempfile::TempDir,
-    path: std::path::PathBuf,
+    pub(super) path: std::path::PathBuf,
 }
 
-fn file(write: impl FnOnce(&mut NetcdfWriter)) -> File {
+pub(super) fn file(write: impl FnOnce(&mut NetcdfWriter)) -> File {
     let folder = tempfile::tempdir().unwrap();
     let path = folder.path().join("synthetic.nc");
     let mut writer = NetcdfWriter::create(&path).unwrap();
@@ -46,7 +46,7 @@ fn opened(write: impl FnOnce(&mut NetcdfWriter)) -> Opened {
     Opened { granule: open(&file.path).unwrap(), _file: file }
 }
 
-fn put(writer: &mut NetcdfWriter, draft: VariableDraft, values: impl Into<Samples>) {
+pub(super) fn put(writer: &mut NetcdfWriter, draft: VariableDraft, values: impl Into<Samples>) {
     writer.variable(&draft).unwrap();
     writer.put_all(&draft.path, &values.into()).unwrap();
 }
@@ -56,18 +56,18 @@ fn filled(granule: &Granule) -> std::sync::Arc<Cube> {
     granule.cube()
 }
 
-const UNIT: &str = "mW m-2 sr-1 (cm-1)-1";
+pub(super) const UNIT: &str = "mW m-2 sr-1 (cm-1)-1";
 
-fn axis(path: &str, dimension: &str, units: &str) -> VariableDraft {
+pub(super) fn axis(path: &str, dimension: &str, units: &str) -> VariableDraft {
     VariableDraft::new(path, ValueKind::F64, &[dimension]).attribute("units", units)
 }
 
-fn radiance(path: &str, dimensions: &[&str], units: &str) -> VariableDraft {
+pub(super) fn radiance(path: &str, dimensions: &[&str], units: &str) -> VariableDraft {
     VariableDraft::new(path, ValueKind::F32, dimensions).attribute("units", units)
 }
 
 /// 2 lines, 3 positions, channels at 900, 901, 902: the value is 100 line + 10 position + channel.
-fn plain(writer: &mut NetcdfWriter) {
+pub(super) fn plain(writer: &mut NetcdfWriter) {
     writer.dimension("line", 2).unwrap();
     writer.dimension("position", 3).unwrap();
     writer.dimension("nu", 3).unwrap();
@@ -77,7 +77,7 @@ fn plain(writer: &mut NetcdfWriter) {
     put(writer, radiance("radiance", &["line", "position", "nu"], UNIT), values);
 }
 
-fn has_problem(granule: &Granule, words: &str) -> bool {
+pub(super) fn has_problem(granule: &Granule, words: &str) -> bool {
     granule.problems().iter().any(|problem| problem.to_string().contains(words))
 }
 

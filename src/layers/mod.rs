@@ -21,7 +21,6 @@ pub use names::{NameError, Names, Values};
 pub use neighbours::Neighbours;
 pub use syntax::{
     DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions,
-    near_names,
 };
 pub use unit::LayerUnit;
 pub use value_range::ValueRange;

@@ -5,9 +5,8 @@ use std::sync::{Arc, OnceLock};
 
 use crate::export::granule_identity;
 use crate::flags::GranuleIdentity;
-use crate::granule::{Cube, Granule, GranuleError};
+use crate::granule::{Cube, Granule, GranuleError, Opening};
 use crate::layers::{Expression, GranuleNames, Layer, Mistake, Neighbours, evaluate_all};
-use crate::netcdf_files::{ReadLimits, ReaderProgram};
 use crate::screening::{Rulebook, Screened, channels_of, screen};
 use crate::system::Cancel;
 
@@ -24,12 +23,8 @@ impl Review {
     ///
     /// # Errors
     /// The file can't be read within the limits, or holds no spectra.
-    pub fn open(
-        program: &ReaderProgram,
-        path: &Path,
-        limits: &ReadLimits,
-    ) -> Result<Review, GranuleError> {
-        Ok(Review::of(Granule::open(program, path, limits)?))
+    pub fn open(opening: &Opening, path: &Path) -> Result<Review, GranuleError> {
+        Ok(Review::of(opening.open(path)?))
     }
 
     /// Puts an open granule on the table.

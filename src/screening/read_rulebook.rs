@@ -11,8 +11,7 @@ use super::mistakes::RulebookError;
 use super::rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
 use super::table_reader::{Notebook, TableReader};
 use super::threshold::{Sense, Table, Threshold};
-use crate::layers::near_names;
-use crate::system::clean_text;
+use crate::system::{clean_text, near_names};
 
 /// What the first key of a rulebook must say.
 const FORMAT: &str = "radsieve rulebook 1";

@@ -6,8 +6,8 @@ use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
 use super::mistakes::RuleMistake;
-use crate::layers::{Expression, near_names};
-use crate::system::clean_text;
+use crate::layers::Expression;
+use crate::system::{clean_text, near_names};
 
 /// The lines of a rulebook and the mistakes found so far.
 pub struct Notebook {

@@ -18,15 +18,47 @@ pub const HAMMING_NOISE_FACTOR: f64 = 0.630_396_700_498_979_4;
 /// `0.54 + 0.46 cos(pi x / L)`. It never reaches across a gap: the first and the last channel of
 /// each stretch have no value (NaN), nor has a channel beside a missing one.
 pub fn hamming3(axis: &ChannelAxis, radiances: &[f64]) -> Vec<f64> {
-    let mut apodised = vec![f64::NAN; radiances.len()];
-    for segment in axis.segments() {
-        for triple in axis.sorted()[segment.clone()].windows(3) {
-            let [before, here, behind] = [triple[0], triple[1], triple[2]];
-            apodised[here] = HAMMING_SIDE * (radiances[before] + radiances[behind])
-                + HAMMING_CENTRE * radiances[here];
+    let mean = Hamming3::new(axis, |_| true);
+    (0..radiances.len()).map(|channel| mean.at(channel, |place| radiances[place])).collect()
+}
+
+/// The same running mean, for those who take it channel by channel.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Hamming3 {
+    /// For each channel those before and behind it; none where it is the end of a stretch.
+    neighbours: Vec<Option<[usize; 2]>>,
+}
+
+impl Hamming3 {
+    /// For the channels of an axis. One that is not usable has no value, nor have those beside it.
+    pub fn new(axis: &ChannelAxis, usable: impl Fn(usize) -> bool) -> Self {
+        let mut neighbours = vec![None; axis.len()];
+        for segment in axis.segments() {
+            for triple in axis.sorted()[segment.clone()].windows(3) {
+                if triple.iter().all(|&channel| usable(channel)) {
+                    neighbours[triple[1]] = Some([triple[0], triple[2]]);
+                }
+            }
+        }
+        Self { neighbours }
+    }
+
+    /// Whether a channel has a value.
+    pub fn has(&self, channel: usize) -> bool {
+        self.neighbours[channel].is_some()
+    }
+
+    /// The value of a channel from the radiances before; NaN where it has none.
+    #[inline]
+    pub fn at(&self, channel: usize, radiance: impl Fn(usize) -> f64) -> f64 {
+        match self.neighbours[channel] {
+            Some([before, behind]) => {
+                HAMMING_SIDE * (radiance(before) + radiance(behind))
+                    + HAMMING_CENTRE * radiance(channel)
+            }
+            None => f64::NAN,
         }
     }
-    apodised
 }
 
 #[cfg(test)]
@@ -52,6 +84,14 @@ mod tests {
         let axis = axis(&[650.0, 650.625, 651.25, 651.875, 652.5]);
         let apodised = hamming3(&axis, &[0.0, 0.0, 1.0, 0.0, 0.0]);
         assert_same(&apodised, &[NONE, 0.23, 0.54, 0.23, NONE]);
+    }
+
+    #[test]
+    fn a_channel_that_is_not_usable_spoils_those_beside_it() {
+        let axis = axis(&[650.0, 650.625, 651.25, 651.875, 652.5, 653.125]);
+        let mean = Hamming3::new(&axis, |channel| channel != 1);
+        let has: Vec<bool> = (0..6).map(|channel| mean.has(channel)).collect();
+        assert_eq!(has, [false, false, false, true, true, false]);
     }
 
     #[test]

@@ -19,7 +19,7 @@ mod reference_tables;
 mod segments;
 
 pub use absorption_bands::{ABSORPTION_BANDS, AbsorptionBand};
-pub use apodisation::{HAMMING_CENTRE, HAMMING_NOISE_FACTOR, HAMMING_SIDE, hamming3};
+pub use apodisation::{HAMMING_CENTRE, HAMMING_NOISE_FACTOR, HAMMING_SIDE, Hamming3, hamming3};
 pub use band_correction::BandCorrection;
 pub use band_integral::{band_integral, blackbody_fraction, total_radiance};
 pub use channel_axis::{AxisError, ChannelAxis, Nearest};

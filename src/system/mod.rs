@@ -9,6 +9,7 @@ mod clean_text;
 mod cores;
 mod deadline;
 mod memory;
+mod near_names;
 mod unchanged;
 mod whole_file;
 
@@ -17,5 +18,6 @@ pub use clean_text::clean_text;
 pub use cores::cores;
 pub use deadline::Deadline;
 pub use memory::free_memory;
+pub use near_names::near_names;
 pub use unchanged::FileStamp;
 pub use whole_file::{WriteError, write_whole};

@@ -7,7 +7,7 @@ use jiff::Timestamp;
 use ratatui::layout::{Rect, Size};
 
 use crate::flags::{Author, Campaign};
-use crate::netcdf_files::{ReadLimits, ReaderProgram};
+use crate::granule::Opening;
 use crate::review::Record;
 use crate::tray::Tray;
 
@@ -21,10 +21,8 @@ use super::panes::{Pane, ScreenLayout};
 /// What the review is given from outside; the same for its whole life.
 #[derive(Clone)]
 pub struct Outside {
-    /// The program that reads files.
-    pub reader: ReaderProgram,
-    /// What a reader may use.
-    pub limits: ReadLimits,
+    /// How granules are opened.
+    pub opening: Opening,
     /// Where decisions, places and exports go.
     pub campaign: Campaign,
     /// Who sits there.

@@ -18,9 +18,8 @@ use super::key::{Code, Key};
 use super::keys::BINDINGS;
 use super::{draw, turning, update, work};
 use crate::flags::{Author, Campaign};
-use crate::netcdf_files::{
-    NetcdfWriter, ReadLimits, ReaderProgram, Samples, ValueKind, VariableDraft,
-};
+use crate::granule::Opening;
+use crate::netcdf_files::{NetcdfWriter, ReaderProgram, Samples, ValueKind, VariableDraft};
 use crate::review::Record;
 use crate::spectral::planck;
 use crate::tray::Tray;
@@ -107,8 +106,7 @@ impl Place {
     fn held(&self, person: &str, names: &[&str]) -> Trial {
         let campaign = Campaign::open_or_create(&self.path("campaign")).unwrap();
         let outside = Outside {
-            reader: ReaderProgram::in_process(),
-            limits: ReadLimits::default(),
+            opening: Opening::new(ReaderProgram::in_process()),
             campaign,
             author: Author { person: person.into(), host: "desk".into(), process: 7 },
             program: "0.0.0".to_owned(),

@@ -27,7 +27,7 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             send(Answer::Standing { entry: *entry, found: standing(path, outside) });
         }
         Job::Open { request, path } => {
-            let found = Review::open(&outside.reader, path, &outside.limits);
+            let found = Review::open(&outside.opening, path);
             let found = found.map(Arc::new).map_err(in_words);
             send(Answer::Opened { request: *request, found });
         }
@@ -128,7 +128,7 @@ fn quality(review: &Review) -> Vec<Quality> {
 
 /// What the ledgers say about a file.
 fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
-    let review = Review::open(&outside.reader, path, &outside.limits).map_err(in_words)?;
+    let review = Review::open(&outside.opening, path).map_err(in_words)?;
     let identity = review.identify().map_err(in_words)?;
     let decisions = read_ledgers(&outside.campaign, &identity).decisions;
     let vocabulary = &outside.campaign.settings().vocabulary;
@@ -148,6 +148,6 @@ fn export(
         person: outside.author.person.clone(),
         now: (outside.clock)(),
     };
-    let exported = review.export(&outside.campaign, &outside.reader, &by, folder, inputs);
+    let exported = review.export(&outside.campaign, &outside.opening.program, &by, folder, inputs);
     exported.map(|done| (done.path, done.messages)).map_err(|error| error.to_string())
 }

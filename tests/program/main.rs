@@ -6,6 +6,7 @@ mod describe;
 mod export;
 mod hostile;
 mod layers;
+mod layout;
 mod manual;
 mod plain_granule;
 mod planck;

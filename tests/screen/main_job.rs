@@ -5,7 +5,8 @@ use std::process::Command;
 use std::time::Duration;
 
 use radsieve::flags::{Author, Campaign, FootprintSet};
-use radsieve::netcdf_files::{ReadLimits, ReaderProgram};
+use radsieve::granule::Opening;
+use radsieve::netcdf_files::ReaderProgram;
 use radsieve::review::{ExportedBy, Record, Review};
 
 use crate::sample;
@@ -150,7 +151,7 @@ fn the_screen_and_the_library_give_the_same_bytes() {
     let program = ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve"));
     let campaign = Campaign::open_or_create(&folder.path().join("second campaign")).unwrap();
     let author = Author { person: "tester".into(), host: "somewhere".into(), process: 7 };
-    let review = Review::open(&program, &file, &ReadLimits::default()).unwrap();
+    let review = Review::open(&Opening::new(program.clone()), &file).unwrap();
     decide_in_library(&review, &campaign, &author);
     let by = ExportedBy {
         program: env!("CARGO_PKG_VERSION").into(),

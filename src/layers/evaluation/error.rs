@@ -3,8 +3,8 @@
 use std::fmt;
 
 use crate::layers::names::NameError;
-use crate::layers::syntax::{Mistake, Span, near_names};
-use crate::system::clean_text;
+use crate::layers::syntax::{Mistake, Span};
+use crate::system::{clean_text, near_names};
 
 /// An expression that is well written but has no numbers here. Shown as a sentence, then the text
 /// with carets under the place.

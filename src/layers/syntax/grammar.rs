@@ -10,7 +10,6 @@ use winnow::stream::{LocatingSlice, Location, Stream};
 use winnow::token::{any, literal, take_while};
 
 use super::mistake::Mistake;
-use super::near_names::near_names;
 use super::pieces::{number, place, quoted, spectral};
 use super::reading::{
     Input, LONGEST, Progress, Read, begins_word, count_operator, deeper, is_in_word, rest, spaced,
@@ -18,6 +17,7 @@ use super::reading::{
 };
 use super::tree::{Infix, Kind, Node, Prefix, Span};
 use super::vocabulary::{Arity, Callable, JOINING_WORDS, callable, example_of, functions};
+use crate::system::near_names;
 
 const A_VALUE: &str = "a number, a name, a function or a parenthesis";
 

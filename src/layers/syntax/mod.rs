@@ -3,7 +3,6 @@
 mod expression;
 mod grammar;
 mod mistake;
-mod near_names;
 mod pieces;
 mod place;
 mod print;
@@ -16,6 +15,5 @@ mod grammar_tests;
 
 pub use expression::{Expression, ExpressionError};
 pub use mistake::Mistake;
-pub use near_names::near_names;
 pub use tree::{Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where};
 pub use vocabulary::{DERIVED_NAMES, FRIENDLY_NAMES, FriendlyName, functions};

@@ -1,0 +1,35 @@
+//! How files are opened: by which reader, within which limits, with which layout file.
+
+use std::path::Path;
+
+use super::error::GranuleError;
+use super::granule_file::{Granule, memory_budget};
+use super::layout_file::LayoutFile;
+use crate::netcdf_files::{FileReader, ReadLimits, ReaderProgram};
+
+/// How files are opened; the same for all files of a run.
+#[derive(Debug, Clone)]
+pub struct Opening {
+    /// The program that reads.
+    pub program: ReaderProgram,
+    /// Its limits.
+    pub limits: ReadLimits,
+    /// What the user says of the files.
+    pub layout: LayoutFile,
+}
+
+impl Opening {
+    /// With the usual limits and without a layout file.
+    pub fn new(program: ReaderProgram) -> Self {
+        Self { program, limits: ReadLimits::default(), layout: LayoutFile::default() }
+    }
+
+    /// Opens a file and understands it. No spectra are read.
+    ///
+    /// # Errors
+    /// The file cannot be read, holds no spectra that can be used, or does not fit the layout file.
+    pub fn open(&self, path: &Path) -> Result<Granule, GranuleError> {
+        let reader = FileReader::open(&self.program, path, &self.limits)?;
+        super::open::open(reader, memory_budget(&self.limits), &self.layout)
+    }
+}
