@@ -166,7 +166,7 @@ pub fn stream_error(error: csv::Error) -> io::Error {
 
 /// A number for a cell: the shortest digits that read back as the same number; empty where missing.
 pub fn cell(value: f64) -> String {
-    if value.is_nan() {
+    if !value.is_finite() {
         String::new()
     } else if value == 0.0 {
         // Never "-0".
@@ -195,6 +195,7 @@ mod tests {
         }
         assert_eq!(cell(-0.0), "0");
         assert_eq!(cell(f64::NAN), "");
+        assert_eq!(cell(f64::INFINITY), "", "as in JSON");
         assert_eq!(serde_json::to_string(&present(-0.0)).unwrap(), "0.0");
         assert_eq!(serde_json::to_string(&present(f64::NAN)).unwrap(), "null");
     }

@@ -22,7 +22,8 @@ pub struct Decoder {
     undeclared_fill: bool,
 }
 
-const ALL: (f64, f64) = (f64::NEG_INFINITY, f64::INFINITY);
+/// Every number; what is infinite is none.
+const ALL: (f64, f64) = (f64::MIN, f64::MAX);
 
 impl Decoder {
     /// The decoder that a variable's attributes ask for.
@@ -38,8 +39,8 @@ impl Decoder {
         let range = match numbers("valid_range").as_deref() {
             Some(&[low, high]) => (low, high),
             _ => {
-                let low = number("valid_min").unwrap_or(f64::NEG_INFINITY);
-                (low, number("valid_max").unwrap_or(f64::INFINITY))
+                let low = number("valid_min").unwrap_or(ALL.0);
+                (low, number("valid_max").unwrap_or(ALL.1))
             }
         };
         let scale = number("scale_factor").unwrap_or(1.0);
@@ -65,7 +66,7 @@ impl Decoder {
     pub fn decode(&self, stored: f64) -> f64 {
         let stored = if stored < 0.0 { stored + self.wrap } else { stored };
         let value = stored * self.scale + self.offset;
-        // Written so that NaN is missing, whatever it is compared with.
+        // Written so that NaN is missing, whatever it is compared with, and so is what is infinite.
         let valid = stored >= self.stored_range.0
             && stored <= self.stored_range.1
             && value >= self.unpacked_range.0
@@ -216,6 +217,7 @@ mod tests {
         assert!(decoder.decode(-888.0).is_nan());
         assert!(decoder.decode(f64::from(9.96921e36_f32)).is_nan(), "the library's default");
         assert!(decoder.decode(f64::NAN).is_nan());
+        assert!(decoder.decode(f64::INFINITY).is_nan() && decoder.decode(-f64::INFINITY).is_nan());
         assert_eq!(decoder.decode(-5.0), -5.0);
     }
 
