@@ -7,16 +7,20 @@ use crate::netcdf_files::{FileIndex, Variable};
 /// have some and the picture fills evenly, and enough that questions to the reader cost little.
 const BYTES_PER_SLAB: usize = 1 << 20;
 
-/// The rows of a slab: whole chunks, so that none is inflated twice.
+/// More is not read at once even where a chunk spans more: it would be too large for one answer of the
+/// reader. Chunks are then cut, and inflated once for each part.
+const MOST_BYTES_PER_SLAB: usize = 64 << 20;
+
+/// The rows of a slab: whole chunks, so that none is inflated twice, unless they are huge.
 pub fn rows_per_slab(index: &FileIndex, variable: &Variable, layout: &Layout) -> usize {
     let lengths = index.lengths(variable);
     let Some(axis) = layout.axis_of(Role::Footprint(0)) else { return 1 };
     let rows = lengths[axis].max(1);
     let values: usize = lengths.iter().product();
     let bytes_per_row = (values / rows).saturating_mul(variable.kind.size().unwrap_or(8)).max(1);
-    let wanted = (BYTES_PER_SLAB / bytes_per_row).clamp(1, rows);
+    let rows_of = |bytes: usize| (bytes / bytes_per_row).clamp(1, rows);
     let chunk = variable.storage.chunks.as_ref().map_or(1, |chunks| chunks[axis]).clamp(1, rows);
-    (wanted / chunk).max(1) * chunk
+    ((rows_of(BYTES_PER_SLAB) / chunk).max(1) * chunk).min(rows_of(MOST_BYTES_PER_SLAB))
 }
 
 #[cfg(test)]
@@ -61,5 +65,11 @@ mod tests {
         assert_eq!(rows([10_000, 1024], Some(5000)), 5000, "one chunk is the least");
         assert_eq!(rows([10, 1 << 24], Some(1)), 1, "and one row");
         assert_eq!(rows([10, 100], Some(1000)), 10, "a chunk may be longer than the variable");
+    }
+
+    #[test]
+    fn huge_chunks_are_cut() {
+        // Chunks over all rows, as of files with a map for each channel: 3.3 GB at once.
+        assert_eq!(rows([100_000, 8192], Some(100_000)), 2048);
     }
 }
