@@ -236,11 +236,10 @@ fn conversion(
         }
         Kind::Share => Ok(Box::new(|value| value)),
         Kind::Time => {
-            let words: String = ["long_name", "comment", "description"]
+            let mut texts = ["long_name", "comment", "description"]
                 .iter()
-                .filter_map(|name| variable.text(name))
-                .collect();
-            let says_tai = words.contains("TAI");
+                .filter_map(|name| variable.text(name));
+            let says_tai = texts.any(|text| speaks_of_tai(&text));
             let calendar = variable.text("calendar");
             let unit = TimeUnit::parse(units, calendar.as_deref(), says_tai)?;
             if unit.scale() == TimeScale::ElapsedSinceUtc && says_tai {
@@ -253,6 +252,14 @@ fn conversion(
             Ok(Box::new(move |value| unit.to_unix(value)))
         }
     }
+}
+
+/// Whether `TAI` is among the words of a text, or `TAI93` and its like, but not a longer word.
+fn speaks_of_tai(text: &str) -> bool {
+    let behind = |word: &str| word.strip_prefix("TAI").map(str::to_owned);
+    text.split(|character: char| !character.is_ascii_alphanumeric())
+        .filter_map(behind)
+        .any(|epoch| epoch.chars().all(|digit| digit.is_ascii_digit()))
 }
 
 /// Values that no place or angle can have are missing.
@@ -272,5 +279,16 @@ fn note_impossible(kind: Kind, values: &mut [f64], path: &str, problems: &mut Ve
     if count > 0 {
         let what = format!("{count} values outside of {} to {}", range.start(), range.end());
         problems.push(Problem::note(&what, path, "taken as missing"));
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn tai_is_a_word_of_its_own() {
+        assert!(speaks_of_tai("Seconds of TAI") && speaks_of_tai("TAI93 at the scan's start"));
+        assert!(!speaks_of_tai("TIME AS THE PACKET CONTAINS IT"));
     }
 }
