@@ -12,7 +12,9 @@ use super::symbols;
 
 /// Longer texts are no units; the limit also bounds the work on a hostile file.
 const MAX_CHARACTERS: usize = 120;
-const MAX_DEPTH: usize = 8;
+/// Deeper than any unit is written. Exponents multiply: 9 to the power of 5, times the number of factors
+/// that fit, times the largest prefix stays far below what an `i32` holds.
+const MAX_DEPTH: usize = 4;
 const MAX_EXPONENT: i32 = 9;
 
 /// What a unit string means.
@@ -309,6 +311,15 @@ mod tests {
     }
 
     #[test]
+    fn the_largest_exponents_do_not_overflow() {
+        let inner = ["fg9"; 20].join(" ");
+        assert_eq!(
+            parse(&format!("(((({inner})9)9)9)9")).unwrap().scale.power,
+            -18 * 20 * 9_i32.pow(5)
+        );
+    }
+
+    #[test]
     fn nonsense_is_refused_where_it_stands() {
         for (text, position) in [
             ("mW parsec", 4),
@@ -319,7 +330,7 @@ mod tests {
             ("m99", 4),
             ("10 -3", 4),
             ("0 W", 1),
-            ("((((((((((m", 9),
+            ("((((((m", 5),
         ] {
             assert_eq!(parse(text).unwrap_err().position, position, "{text}");
         }
