@@ -58,12 +58,17 @@ fn other_than_file(kind: FileType) -> Option<&'static str> {
     }
 }
 
-/// Nothing where the file begins as it should, else its first bytes in words.
-fn begins_like_netcdf(path: &Path, metadata: &Metadata) -> io::Result<Option<String>> {
-    // Not waiting, for the case that the file has been replaced by a pipe since we looked.
+/// Opens a file for reading without waiting, for the case that it has been replaced by a pipe since it
+/// was looked at.
+pub fn open_without_waiting(path: &Path) -> io::Result<File> {
     let wait_for_nobody = rustix::fs::OFlags::NONBLOCK.bits();
     let flags = i32::from_ne_bytes(wait_for_nobody.to_ne_bytes());
-    let mut file = OpenOptions::new().read(true).custom_flags(flags).open(path)?;
+    OpenOptions::new().read(true).custom_flags(flags).open(path)
+}
+
+/// Nothing where the file begins as it should, else its first bytes in words.
+fn begins_like_netcdf(path: &Path, metadata: &Metadata) -> io::Result<Option<String>> {
+    let mut file = open_without_waiting(path)?;
     let beginning = bytes_at(&mut file, 0)?;
     if CLASSIC.iter().any(|magic| beginning.starts_with(magic)) {
         return Ok(None);

@@ -6,6 +6,7 @@ use std::path::{Path, PathBuf};
 use netcdf::Extents;
 
 use super::attribute::Attribute;
+use super::block::place_in_block;
 use super::chunks::{self, ChunkTable};
 use super::index::{Dimension, FileIndex, Group, INDEX_VERSION, Variable};
 use super::library_types::{attribute_of, kind_of};
@@ -133,17 +134,6 @@ impl LibraryFile {
 
 fn extents(start: &[usize], count: &[usize]) -> Result<Extents, Refusal> {
     Extents::try_from((start, count)).map_err(|error| error.to_string())
-}
-
-/// Where the value with the given number lies, in a block that is read row by row.
-fn place_in_block(number: usize, start: &[usize], count: &[usize]) -> Vec<usize> {
-    let mut rest = number;
-    let mut place = start.to_vec();
-    for axis in (0..count.len()).rev() {
-        place[axis] += rest % count[axis];
-        rest /= count[axis];
-    }
-    place
 }
 
 /// The library hides which classic format it is; the file's fourth byte tells.

@@ -5,6 +5,7 @@
 //! **Never** knows what a radiance is.
 
 mod attribute;
+mod block;
 mod chunks;
 mod confine;
 mod door;

@@ -118,7 +118,13 @@ pub enum ReadFault {
 impl ReadFault {
     /// Whether the whole file is lost rather than one variable: asking on would only take more time.
     pub fn ends_the_file(&self) -> bool {
-        !matches!(self, Self::Library { .. } | Self::MissingFilter { .. } | Self::BadRequest { .. })
+        !matches!(
+            self,
+            Self::Library { .. }
+                | Self::MissingFilter { .. }
+                | Self::Chunk { .. }
+                | Self::BadRequest { .. }
+        )
     }
 }
 

@@ -7,6 +7,7 @@ use netcdf::{Endianness, FileMut, Options, VariableMut};
 use serde::{Deserialize, Serialize};
 
 use super::attribute::{Attribute, AttributeValue};
+use super::block::place_in_block;
 use super::library_types::{library_attribute, library_kind};
 use super::samples::{Samples, ValueKind};
 
@@ -352,12 +353,7 @@ fn put_texts(
 ) -> netcdf::Result<()> {
     let ones = vec![1; count.len()];
     for (number, text) in texts.iter().enumerate() {
-        let mut rest = number;
-        let mut place = start.to_vec();
-        for axis in (0..count.len()).rev() {
-            place[axis] += rest % count[axis];
-            rest /= count[axis];
-        }
+        let place = place_in_block(number, start, count);
         variable.put_string(text, (place.as_slice(), ones.as_slice()))?;
     }
     Ok(())

@@ -1,12 +1,13 @@
 //! The file that chunks are read from, past the libraries.
 
-use std::fs::{File, OpenOptions};
+use std::fs::File;
 use std::io;
-use std::os::unix::fs::{FileExt, OpenOptionsExt};
+use std::os::unix::fs::FileExt;
 use std::path::Path;
 
 use super::fault::ChunkFault;
 use super::table::StoredChunk;
+use crate::netcdf_files::door::open_without_waiting;
 use crate::system::FileStamp;
 
 /// An open file of which it is known which one it is.
@@ -18,11 +19,7 @@ pub struct ChunkFile {
 impl ChunkFile {
     /// Opens the file at `path`. Whether it is the right one, [`Self::stamp`] tells.
     pub fn open(path: &Path) -> io::Result<Self> {
-        // Not waiting, for the case that the file has been replaced by a pipe since it was checked.
-        let wait_for_nobody = rustix::fs::OFlags::NONBLOCK.bits();
-        let flags = i32::from_ne_bytes(wait_for_nobody.to_ne_bytes());
-        let file = OpenOptions::new().read(true).custom_flags(flags).open(path)?;
-        Ok(Self { file })
+        Ok(Self { file: open_without_waiting(path)? })
     }
 
     /// The stamp of the open file as it is now.

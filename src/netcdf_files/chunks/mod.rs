@@ -1,6 +1,6 @@
 //! Decoding chunks without the C libraries that wrote them: in parallel, straight into place.
 //!
-//! The reader process says where the chunks lie ([`survey`] makes a [`ChunkTable`]); this process
+//! The reader process says where the chunks lie ([`survey()`] makes a [`ChunkTable`]); this process
 //! checks the table, takes the bytes out of the file and undoes the filters. It does so for an exact
 //! list of ways to store values; all else is left to the reader process.
 
