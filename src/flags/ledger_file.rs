@@ -6,6 +6,7 @@ use std::path::{Path, PathBuf};
 
 use super::Decision;
 use super::ledger_line::{Header, write_decision, write_line};
+use crate::system::sync_folder;
 
 /// More files of one writer for one granule than any trouble makes.
 const MOST_FILES: u32 = 10_000;
@@ -68,13 +69,4 @@ fn create_new(folder: &Path, name: &str) -> io::Result<(File, PathBuf)> {
         }
     }
     Err(io::Error::new(io::ErrorKind::AlreadyExists, "too many ledger files of this name"))
-}
-
-/// A new file's name is kept only when its folder is.
-fn sync_folder(folder: &Path) -> io::Result<()> {
-    match File::open(folder)?.sync_all() {
-        // Some network file systems cannot sync a folder; the file's own sync stands all the same.
-        Err(error) if error.kind() == io::ErrorKind::InvalidInput => Ok(()),
-        result => result,
-    }
 }

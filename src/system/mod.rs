@@ -1,4 +1,4 @@
-//! What every program needs of the machine: whole-file writes, cancellation, limits, clean text.
+//! What every program needs of the machine: whole-file writes, cancellation, deadlines, clean text.
 //!
 //! Uses: no other room.
 //!
@@ -6,7 +6,6 @@
 
 mod cancel;
 mod clean_text;
-mod cores;
 mod deadline;
 mod memory;
 mod near_names;
@@ -15,9 +14,8 @@ mod whole_file;
 
 pub use cancel::Cancel;
 pub use clean_text::clean_text;
-pub use cores::cores;
 pub use deadline::Deadline;
 pub use memory::free_memory;
 pub use near_names::near_names;
 pub use unchanged::FileStamp;
-pub use whole_file::{WriteError, write_whole};
+pub use whole_file::{WriteError, sync_folder, write_whole};

@@ -95,9 +95,10 @@ fn content_error<E>(target: &Path, folder: &Path, source: E) -> WriteError<E> {
     }
 }
 
-fn sync_folder(folder: &Path) -> io::Result<()> {
+/// Waits until the disk has the names in `folder`: a new file is kept only when its name is.
+pub fn sync_folder(folder: &Path) -> io::Result<()> {
     match File::open(folder)?.sync_all() {
-        // Some network file systems cannot sync a folder; the rename stands all the same.
+        // Some network file systems cannot sync a folder; the file's own sync stands all the same.
         Err(error) if error.kind() == io::ErrorKind::InvalidInput => Ok(()),
         result => result,
     }
