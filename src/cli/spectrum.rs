@@ -11,6 +11,7 @@ use super::footprint_at::{footprint, indices};
 use super::inputs::Reading;
 use super::table::{cell, present, stream_error};
 use crate::granule::{Band, Granule};
+use crate::review::{Review, Spectrum};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
@@ -29,52 +30,33 @@ pub struct Arguments {
     reading: Reading,
 }
 
-/// The spectrum of one band; missing values are NaN.
-struct BandSpectrum {
-    name: String,
-    wavenumbers: Vec<f64>,
-    radiances: Vec<f64>,
-    temperatures: Vec<f64>,
-}
-
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let position = indices("--at", &arguments.at)?;
     let granule = arguments.reading.opening()?.open(&arguments.file)?;
     let footprint = footprint("--at", granule.footprints(), &position)?;
-    let bands = bands(&granule, footprint)?;
+    let review = Review::of(granule);
+    let spectrum = review.read_spectrum(footprint)?;
     let mut out = BufWriter::new(io::stdout().lock());
     if arguments.json {
-        let answer = answer(&arguments, &granule, &position, footprint, &bands);
+        let answer = answer(&arguments, review.granule(), &position, &spectrum);
         serde_json::to_writer(&mut out, &answer).map_err(io::Error::from)?;
         out.write_all(b"\n")?;
     } else {
-        write_csv(&bands, &mut out)?;
+        write_csv(review.granule().bands(), &spectrum, &mut out)?;
     }
     out.flush()?;
     Ok(Exit::Done)
 }
 
-fn bands(granule: &Granule, footprint: usize) -> anyhow::Result<Vec<BandSpectrum>> {
-    let spectrum = |(place, band): (usize, &Band)| {
-        Ok(BandSpectrum {
-            name: band.name.clone(),
-            wavenumbers: band.axis.wavenumbers().to_vec(),
-            radiances: granule.radiances(place, footprint)?,
-            temperatures: granule.brightness_temperatures(place, footprint)?,
-        })
-    };
-    granule.bands().iter().enumerate().map(spectrum).collect()
-}
-
 /// Channels in the file's order, band after band.
-fn write_csv(bands: &[BandSpectrum], out: &mut dyn Write) -> io::Result<()> {
+fn write_csv(bands: &[Band], spectrum: &Spectrum, out: &mut dyn Write) -> io::Result<()> {
     let mut writer = csv::Writer::from_writer(out);
     let head = ["band", "wavenumber_cm-1", "radiance_mW_m-2_sr-1_(cm-1)-1", "bt_K"];
     writer.write_record(head).map_err(stream_error)?;
-    for band in bands {
-        let values = band.radiances.iter().zip(&band.temperatures);
-        for (wavenumber, (radiance, temperature)) in band.wavenumbers.iter().zip(values) {
+    for (band, values) in bands.iter().zip(&spectrum.bands) {
+        let values = values.radiances.iter().zip(&values.temperatures);
+        for (wavenumber, (radiance, temperature)) in band.axis.wavenumbers().iter().zip(values) {
             let numbers = [*wavenumber, *radiance, *temperature].map(cell);
             let row = std::iter::once(&band.name).chain(&numbers);
             writer.write_record(row).map_err(stream_error)?;
@@ -108,11 +90,12 @@ fn answer(
     arguments: &Arguments,
     granule: &Granule,
     position: &[usize],
-    footprint: usize,
-    bands: &[BandSpectrum],
+    spectrum: &Spectrum,
 ) -> Answer {
     let place = granule.geolocation();
-    let field = |values: &Option<Vec<f64>>| values.as_ref().and_then(|v| present(v[footprint]));
+    let field = |values: &Option<Vec<f64>>| {
+        values.as_ref().and_then(|values| present(values[spectrum.footprint]))
+    };
     let names = granule.footprints().names().iter().cloned();
     let all = |values: &[f64]| values.iter().map(|value| present(*value)).collect();
     Answer {
@@ -120,13 +103,15 @@ fn answer(
         position: names.zip(position.iter().map(|index| Value::from(*index))).collect(),
         lat: field(&place.latitude),
         lon: field(&place.longitude),
-        bands: bands
+        bands: granule
+            .bands()
             .iter()
-            .map(|band| BandAnswer {
+            .zip(&spectrum.bands)
+            .map(|(band, values)| BandAnswer {
                 band: band.name.clone(),
-                wavenumbers: band.wavenumbers.clone(),
-                radiances: all(&band.radiances),
-                temperatures: all(&band.temperatures),
+                wavenumbers: band.axis.wavenumbers().to_vec(),
+                radiances: all(&values.radiances),
+                temperatures: all(&values.temperatures),
             })
             .collect(),
     }

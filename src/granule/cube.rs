@@ -145,11 +145,6 @@ impl Cube {
         self.bands[band].slabs.iter().all(|slab| slab.get().is_some())
     }
 
-    /// Whether everything has been read.
-    pub fn is_all_complete(&self) -> bool {
-        (0..self.bands.len()).all(|band| self.is_complete(band))
-    }
-
     /// Bytes of the values that are here.
     pub fn held_bytes(&self) -> u64 {
         let slabs = self.bands.iter().flat_map(|band| &band.slabs).filter_map(OnceLock::get);

@@ -1,9 +1,9 @@
 //! A granule: an open file whose parts are understood.
 
-use std::path::{Path, PathBuf};
+use std::path::Path;
 use std::sync::{Arc, OnceLock};
 
-use super::band::{Band, Channel, Quantity};
+use super::band::{Band, Channel};
 use super::channels::{NoChannel, channel_near, channels_between};
 use super::cube::{Cube, Presence};
 use super::decoder::Decoder;
@@ -20,7 +20,6 @@ use super::side_by_side::side_by_side;
 use crate::netcdf_files::{
     Demand, FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable,
 };
-use crate::spectral::{brightness_temperature_or_nan, planck};
 use crate::system::{Cancel, clean_text, free_memory};
 
 /// A file of spectra over footprints. Many threads may use it at once.
@@ -264,44 +263,6 @@ impl Granule {
         Ok(self.cube.decode_spectrum(band, &samples))
     }
 
-    /// One footprint's radiances, mW m-2 sr-1 (cm-1)-1, missing as NaN. Where the file holds
-    /// brightness temperatures, they are those of black bodies.
-    pub fn radiances(&self, band: usize, footprint: usize) -> Result<Vec<f64>, GranuleError> {
-        let values = self.read_spectrum(band, footprint)?;
-        Ok(match self.bands[band].quantity {
-            Quantity::Radiance(_) => values,
-            Quantity::BrightnessTemperature(_) => self.over_channels(band, values, planck),
-        })
-    }
-
-    /// One footprint's brightness temperatures, K, missing as NaN.
-    pub fn brightness_temperatures(
-        &self,
-        band: usize,
-        footprint: usize,
-    ) -> Result<Vec<f64>, GranuleError> {
-        let values = self.read_spectrum(band, footprint)?;
-        Ok(match self.bands[band].quantity {
-            Quantity::Radiance(_) => {
-                self.over_channels(band, values, brightness_temperature_or_nan)
-            }
-            Quantity::BrightnessTemperature(_) => values,
-        })
-    }
-
-    fn over_channels(
-        &self,
-        band: usize,
-        mut values: Vec<f64>,
-        convert: impl Fn(f64, f64) -> f64,
-    ) -> Vec<f64> {
-        let wavenumbers = self.bands[band].axis.wavenumbers();
-        for (value, &wavenumber) in values.iter_mut().zip(wavenumbers) {
-            *value = convert(wavenumber, *value);
-        }
-        values
-    }
-
     /// Reads a variable of the footprints: one number for each, missing as NaN. `name` is its path,
     /// or its last part where that is the only one of its kind.
     pub fn read_variable(&self, name: &str) -> Result<Vec<f64>, GranuleError> {
@@ -341,11 +302,6 @@ impl Granule {
     pub fn cube_bytes(&self) -> usize {
         let size = |band| self.band_variable(band).kind.size().unwrap_or(8);
         (0..self.bands.len()).map(|band| self.cube.bytes(band, size(band))).sum()
-    }
-
-    /// The place of the file that was opened, absolute.
-    pub fn absolute_path(&self) -> PathBuf {
-        std::path::absolute(self.path()).unwrap_or_else(|_| self.path().to_owned())
     }
 }
 
