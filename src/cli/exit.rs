@@ -17,6 +17,17 @@ pub enum Exit {
     Signal(u8),
 }
 
+impl Exit {
+    /// How a command over many inputs ended, of which `failed` failed and were named.
+    pub fn of_many(done: usize, failed: usize) -> Exit {
+        match (done, failed) {
+            (_, 0) => Exit::Done,
+            (0, _) => Exit::Failed,
+            _ => Exit::SomeFailed,
+        }
+    }
+}
+
 impl From<Exit> for ExitCode {
     fn from(exit: Exit) -> ExitCode {
         ExitCode::from(match exit {

@@ -85,15 +85,8 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     if arguments.json {
         writeln!(std::io::stdout(), "{}", summary(&results))?;
     }
-    Ok(exit(results.iter().filter(|(_, result)| result.is_err()).count(), results.len()))
-}
-
-fn exit(failed: usize, all: usize) -> Exit {
-    match failed {
-        0 => Exit::Done,
-        failed if failed < all => Exit::SomeFailed,
-        _ => Exit::Failed,
-    }
+    let failed = results.iter().filter(|(_, result)| result.is_err()).count();
+    Ok(Exit::of_many(results.len() - failed, failed))
 }
 
 /// Messages on standard error; the file's name on standard output, for scripts.

@@ -1,6 +1,6 @@
 //! `radsieve synth`: synthetic granules with their truth.
 
-use std::io::IsTerminal;
+use std::io::{IsTerminal, Write};
 use std::path::PathBuf;
 
 use indicatif::{ProgressBar, ProgressStyle};
@@ -86,7 +86,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         let progress = Progress::new(&name);
         make_granule(recipe, &path, &cancel, &mut |done, all| progress.at(done, all))?;
         progress.end();
-        println!("{}", path.display());
+        writeln!(std::io::stdout(), "{}", path.display())?;
     }
     Ok(Exit::Done)
 }

@@ -207,11 +207,9 @@ fn tell(file: &str, granule: &Granule, layers: &[Layer]) {
 
 impl Tally {
     fn exit(&self) -> Exit {
-        match (self.done, self.failed) {
-            (_, 0) => Exit::Done,
-            (0, failed) if failed == self.unknown_names => Exit::Usage,
-            (0, _) => Exit::Failed,
-            _ => Exit::SomeFailed,
+        match Exit::of_many(self.done, self.failed) {
+            Exit::Failed if self.failed == self.unknown_names => Exit::Usage,
+            exit => exit,
         }
     }
 }
