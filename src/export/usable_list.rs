@@ -6,6 +6,7 @@ use super::mask::ExportError;
 use super::provenance::Record;
 use super::source::MaskSource;
 use super::target::Owner;
+use crate::granule::FootprintGrid;
 use crate::system::write_whole;
 
 /// The column that says which granule a row is of.
@@ -32,11 +33,13 @@ pub fn write_usable_list(
     }
     let usable: Vec<usize> =
         (0..granule).filter(|&at| record.state.usable(at, record.vocabulary)).collect();
+    let (names, lengths) = source.footprints.iter().cloned().unzip();
+    let grid = FootprintGrid::new(names, lengths);
     write_whole(target, |temporary| {
         let mut csv = csv::Writer::from_path(temporary)?;
         csv.write_record(header(source))?;
         for &footprint in &usable {
-            csv.write_record(row(source, record, footprint))?;
+            csv.write_record(row(source, record, &grid, footprint))?;
         }
         csv.flush()
     })?;
@@ -51,9 +54,13 @@ fn header(source: &MaskSource) -> Vec<String> {
     header
 }
 
-fn row(source: &MaskSource, record: &Record<'_>, footprint: usize) -> Vec<String> {
-    let mut row: Vec<String> =
-        position(source, footprint).iter().map(ToString::to_string).collect();
+fn row(
+    source: &MaskSource,
+    record: &Record<'_>,
+    grid: &FootprintGrid,
+    footprint: usize,
+) -> Vec<String> {
+    let mut row: Vec<String> = grid.position(footprint).iter().map(ToString::to_string).collect();
     for values in [&source.latitude, &source.longitude].into_iter().flatten() {
         let value = values.get(footprint).filter(|value| value.is_finite());
         row.push(value.map(ToString::to_string).unwrap_or_default());
@@ -67,23 +74,6 @@ fn row(source: &MaskSource, record: &Record<'_>, footprint: usize) -> Vec<String
     let lost: Vec<&str> = lost.map(|(name, _)| name.as_str()).collect();
     row.extend([lost.join(" "), short(source).to_owned()]);
     row
-}
-
-/// Indices along the footprint dimensions, the last one running fastest.
-fn position(source: &MaskSource, footprint: usize) -> Vec<usize> {
-    let mut left = footprint;
-    let mut position: Vec<usize> = source
-        .footprints
-        .iter()
-        .rev()
-        .map(|(_, length)| {
-            let index = left % length.max(&1);
-            left /= length.max(&1);
-            index
-        })
-        .collect();
-    position.reverse();
-    position
 }
 
 /// Whose the list at `path` is, where `source` may be its granule.
