@@ -44,10 +44,6 @@ impl<'g> GranuleNames<'g> {
         self
     }
 
-    fn field(&self, name: &str) -> Option<&[f64]> {
-        self.granule.geolocation().field(name)
-    }
-
     /// The index of each footprint along a dimension.
     fn index_along(&self, dimension: usize) -> Vec<f64> {
         let lengths = self.granule.footprints().lengths();
@@ -131,13 +127,13 @@ impl Names for GranuleNames<'_> {
 
     fn named(&self, name: &str) -> Result<Values, NameError> {
         if let Some(friendly) = FRIENDLY_NAMES.iter().find(|friendly| friendly.name == name) {
-            return match self.field(name) {
+            return match self.granule.geolocation().field(name) {
                 Some(values) => Ok(Values { values: values.to_vec(), unit: friendly.unit }),
                 None => Err(NameError::NotInFile(format!("{name} ({})", friendly.meaning))),
             };
         }
         if let Some(derived) = DERIVED_NAMES.iter().find(|derived| derived.name == name) {
-            let values = derive(name, &|field| self.field(field))
+            let values = derive(name, &|field| self.granule.geolocation().field(field))
                 .map_err(|needed| NameError::NotInFile(format!("{needed}, which {name} needs")))?;
             return Ok(Values { values, unit: derived.unit });
         }

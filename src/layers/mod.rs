@@ -12,7 +12,6 @@ mod names;
 mod neighbours;
 mod syntax;
 mod unit;
-mod value_range;
 
 pub use evaluation::{Layer, LayerError, channels_needed, evaluate, evaluate_all};
 pub use first_look::{FIRST_LOOK, suggestions};
@@ -23,7 +22,6 @@ pub use syntax::{
     DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions,
 };
 pub use unit::LayerUnit;
-pub use value_range::ValueRange;
 
 #[cfg(test)]
 pub(crate) use evaluation::FakeNames;
