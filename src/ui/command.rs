@@ -2,6 +2,7 @@
 
 use super::keys::{self, Action, BINDINGS};
 use super::side::Side;
+use crate::units::wavenumber_from_text;
 
 /// A command with its words.
 #[derive(Debug, Clone, PartialEq)]
@@ -132,18 +133,7 @@ fn layer(words: &str) -> Result<Command, String> {
 }
 
 fn go(words: &str) -> Result<Command, String> {
-    let lower = words.to_lowercase();
-    let length = ["um", "µm", "μm"].into_iter().find_map(|unit| lower.strip_suffix(unit));
-    let wavenumber = match length {
-        // A length in micrometres: 1 cm is 10 000 of them.
-        Some(length) => 1e4 / number(length)?,
-        None => number(lower.trim_end_matches("cm-1"))?,
-    };
-    if wavenumber.is_finite() && wavenumber > 0.0 {
-        Ok(Command::Go(wavenumber))
-    } else {
-        Err("a wavenumber or length is above zero".to_owned())
-    }
+    wavenumber_from_text(words).map(Command::Go).map_err(|error| error.to_string())
 }
 
 fn name_and_reason(words: &str) -> Result<(String, Option<String>), String> {
@@ -240,6 +230,7 @@ mod tests {
             ("layer bt(900) - bt(831)", Command::Layer("bt(900) - bt(831)".to_owned())),
             ("go 900.5", Command::Go(900.5)),
             ("go 10um", Command::Go(1000.0)),
+            ("go 30 THz", Command::Go(30e12 / 29_979_245_800.0)),
             ("flag cloudy", Command::Flag("cloudy".to_owned(), None)),
             ("flag so2 plume edge", Command::Flag("so2".into(), Some("plume edge".into()))),
             ("range 200 300", Command::Range(Some((200.0, 300.0)))),
@@ -258,8 +249,8 @@ mod tests {
             ("undoo", "near it: undo"),
             ("undo twice", "no further words"),
             ("layer", "expression"),
-            ("go -3", "above zero"),
-            ("go soon", "no number"),
+            ("go -3", "must be positive"),
+            ("go soon", "does not begin with a number"),
             ("side 230", "< or >"),
             ("range 300 200", "comes first"),
             ("", "no command"),

@@ -15,28 +15,6 @@ pub struct Scale {
 }
 
 impl Scale {
-    /// A range that fits the values: between their 1st and 99th percentile, so that a few stray
-    /// values do not flatten the picture; around zero for a diverging map. Missing values are left
-    /// out; without any value the range is 0 to 1.
-    pub fn fitting(palette: Palette, values: &[f64]) -> Self {
-        let mut finite: Vec<f64> = values.iter().copied().filter(|v| v.is_finite()).collect();
-        let (low, high) = match finite.len() {
-            0 => (0.0, 1.0),
-            count => {
-                let tail = count / 100;
-                let (_, low, _) = finite.select_nth_unstable_by(tail, f64::total_cmp);
-                let low = *low;
-                let (_, high, _) = finite.select_nth_unstable_by(count - 1 - tail, f64::total_cmp);
-                (low, *high)
-            }
-        };
-        if palette.is_diverging() {
-            let reach = low.abs().max(high.abs());
-            return Self { palette, low: -reach, high: reach };
-        }
-        Self { palette, low, high }
-    }
-
     /// The level (0 to 31) of a value; values outside the range take the end's. `None` for NaN.
     /// A range without width puts everything in the middle.
     pub fn level(&self, value: f64) -> Option<u8> {
@@ -73,21 +51,6 @@ mod tests {
         assert_eq!(scale.level(f64::NAN), None);
     }
 
-    #[test]
-    fn a_stray_value_does_not_flatten_the_picture() {
-        let mut values: Vec<f64> = (0..1000).map(|i| 280.0 + f64::from(i) * 0.01).collect();
-        values.push(1e9);
-        values.push(f64::NAN);
-        let scale = Scale::fitting(Palette::Viridis, &values);
-        assert!(scale.low >= 280.0 && scale.high <= 290.0, "{scale:?}");
-    }
-
-    #[test]
-    fn differences_are_centred_on_zero() {
-        let scale = Scale::fitting(Palette::Vik, &[-1.0, 0.5, 4.0]);
-        assert_eq!((scale.low, scale.high), (-4.0, 4.0));
-    }
-
     proptest! {
         #[test]
         fn levels_rise_with_values(low in -1e3f64..1e3, width in 1e-3f64..1e3, a: f64, b: f64) {
@@ -102,7 +65,6 @@ mod tests {
         fn any_range_is_survived(low: f64, high: f64, value: f64) {
             let scale = Scale { palette: Palette::Vik, low, high };
             prop_assert_eq!(scale.level(value).is_none(), value.is_nan());
-            Scale::fitting(Palette::Vik, &[low, high, value]);
         }
     }
 }
