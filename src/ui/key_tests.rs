@@ -338,6 +338,28 @@ fn it_opens_at_the_first_granule_that_is_not_signed_off_and_steps_over_broken_fi
 }
 
 #[test]
+fn going_back_to_a_file_that_has_gone_comes_back_to_the_one_that_is_there() {
+    let names = ["a.nc", "b.nc"];
+    let place = Place::with(&names);
+    append_byte(&place.path("b.nc"));
+    let mut trial = place.review(&names);
+    trial.keys("n");
+    std::fs::remove_file(place.path("a.nc")).unwrap();
+    trial.keys("p");
+    assert_eq!(trial.granule(), "b.nc");
+    assert!(trial.message().starts_with("a.nc: "), "{}", trial.message());
+}
+
+#[test]
+fn a_channel_that_is_not_where_it_was_asked_for_is_told() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":go 901").keys("Enter");
+    assert_eq!(trial.message(), "channel at 901.00 cm-1");
+    trial.types(":go 2500").keys("Enter");
+    assert!(trial.message().starts_with("no channel at 2500.00 cm-1"), "{}", trial.message());
+}
+
+#[test]
 fn opening_can_be_given_up_for_another_granule() {
     let names = ["lowen_001.nc", "pell_002.nc"];
     let place = Place::with(&names);

@@ -125,8 +125,13 @@ pub fn go_to_channel(app: &mut App, wavenumber: f64) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     let number = bench.channels.nearest(wavenumber);
     bench.take_channel(number);
-    if let Some(taken) = bench.channel_wavenumber() {
-        app.say(format!("channel at {taken} cm-1"));
+    let Some(taken) = bench.channel_wavenumber() else { return Vec::new() };
+    // A layer would refuse such a place: the channel in hand is not what was asked for.
+    match bench.review.granule().channel_near(wavenumber) {
+        Ok(_) => app.say(format!("channel at {taken:.2} cm-1")),
+        Err(_) => app.warn(format!(
+            "no channel at {wavenumber:.2} cm-1; in hand is the nearest, at {taken:.2}"
+        )),
     }
     Vec::new()
 }

@@ -56,9 +56,26 @@ fn end_anyway_later(signal: i32) {
 /// in another session (a command given to ssh, a pane that runs nothing else) could never be
 /// continued from its terminal: the kernel does not stop it by a key either.
 pub fn can_be_continued() -> bool {
-    let parent = rustix::process::getppid();
+    let leader = rustix::process::getpgrp();
+    let parent = match leader == rustix::process::getpid() {
+        true => rustix::process::getppid(),
+        // A script around us leads the group.
+        false => parent_of(leader).or_else(rustix::process::getppid),
+    };
     let session = |process| rustix::process::getsid(process).ok();
     parent.is_some_and(|parent| session(Some(parent)) == session(None))
+}
+
+/// The parent of another process, where the system has a `/proc` that tells it.
+fn parent_of(process: rustix::process::Pid) -> Option<rustix::process::Pid> {
+    let path = format!("/proc/{}/stat", process.as_raw_nonzero());
+    parent_in(&std::fs::read_to_string(path).ok()?)
+}
+
+/// `number (name) state parent …`; the name may hold anything, brackets too.
+fn parent_in(stat: &str) -> Option<rustix::process::Pid> {
+    let behind_name = stat.rsplit_once(')')?.1;
+    rustix::process::Pid::from_raw(behind_name.split_whitespace().nth(1)?.parse().ok()?)
 }
 
 /// Asks the whole job to stop, as the shell's Ctrl-Z does: a script around us has to stop too.
@@ -70,4 +87,19 @@ pub fn ask_for_stop() {
 /// Stops this process; returns when it is continued.
 pub fn stop() {
     let _ = low_level::emulate_default_handler(SIGTSTP);
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_parent_of_a_process_is_read_whatever_its_name() {
+        let parent = |stat| parent_in(stat).map(|parent| parent.as_raw_nonzero().get());
+        assert_eq!(parent("41 (a) b (c) S 17 41 41 0 -1"), Some(17));
+        assert_eq!(parent("41 (kernel) S 0 0 0"), None);
+        assert_eq!(parent("nothing of the kind"), None);
+        let own = rustix::process::getpid();
+        assert_eq!(parent_of(own), rustix::process::getppid());
+    }
 }

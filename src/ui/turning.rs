@@ -122,7 +122,11 @@ pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: St
         Direction::Backward => app.tray.previous(entry),
         Direction::ForwardUnsigned => app.tray.next_unsigned(Some(entry)),
     };
-    let next = next.or_else(|| app.tray.previous(entry));
+    // With nothing left that way, the other way.
+    let next = next.or_else(|| match direction {
+        Direction::Backward => app.tray.next(Some(entry)),
+        _ => app.tray.previous(entry),
+    });
     let Some(next) = next else {
         if app.tray.len() > 1 {
             none_is_left(app);
