@@ -4,9 +4,11 @@ use std::path::Path;
 
 use super::trial::{Place, Trial};
 
+type Mishap = fn(&Path);
+
 /// A review whose granule is understood, and whose file meets with a mishap before its spectra are
 /// read.
-fn review_of_lost(place: &Place, mishap: impl FnOnce(&Path)) -> Trial {
+fn review_of_lost(place: &Place, mishap: Mishap) -> Trial {
     let mut trial = place.review_held(&["a.nc", "b.nc"]);
     while trial.app.bench().is_none() {
         for answer in trial.answers_of_next() {
@@ -20,12 +22,12 @@ fn review_of_lost(place: &Place, mishap: impl FnOnce(&Path)) -> Trial {
 
 #[test]
 fn a_file_that_changes_or_goes_before_it_is_read_is_told_and_the_next_one_opens() {
-    let cut = |path: &Path| {
+    let cut: Mishap = |path| {
         let bytes = std::fs::read(path).unwrap();
         std::fs::write(path, &bytes[..bytes.len() / 2]).unwrap();
     };
-    let gone = |path: &Path| std::fs::remove_file(path).unwrap();
-    let mishaps: [(&dyn Fn(&Path), &str); 2] = [(&cut, "has changed"), (&gone, "No such file")];
+    let gone: Mishap = |path| std::fs::remove_file(path).unwrap();
+    let mishaps: [(Mishap, &str); 2] = [(cut, "has changed"), (gone, "No such file")];
     for (mishap, word) in mishaps {
         let place = Place::with(&["a.nc", "b.nc"]);
         let mut trial = review_of_lost(&place, mishap);
