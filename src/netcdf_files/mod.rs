@@ -4,6 +4,8 @@
 //!
 //! **Never** knows what a radiance is.
 
+#[cfg(any(test, fuzzing))]
+pub mod any_bytes;
 mod attribute;
 mod block;
 mod chunks;

@@ -4,6 +4,8 @@
 //! checks the table, takes the bytes out of the file and undoes the filters. It does so for an exact
 //! list of ways to store values; all else is left to the reader process.
 
+#[cfg(any(test, fuzzing))]
+pub mod any_chunk;
 mod chunk_file;
 mod decode;
 mod fast_path;
