@@ -47,8 +47,8 @@ pub struct FlagResult {
 impl FlagResult {
     /// Whether the tests set the flag.
     pub fn is_set(&self, footprint: usize) -> bool {
-        // Not a number where no test speaks, and then not set.
-        self.conclusions[footprint].probability >= 0.5
+        // Not a number where no test speaks, and then not set; nor is a coin toss.
+        self.conclusions[footprint].probability > 0.5
     }
 }
 

@@ -11,5 +11,6 @@ mod manual;
 mod plain_granule;
 mod planck;
 mod samples;
+mod screen;
 mod spectrum;
 mod tabulate;
