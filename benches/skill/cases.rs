@@ -2,8 +2,8 @@
 
 use std::path::Path;
 
+use radsieve::granule::Opening;
 use radsieve::layers::{Expression, evaluate};
-use radsieve::netcdf_files::{ReadLimits, ReaderProgram};
 use radsieve::review::Review;
 use radsieve::screening::{Evidence, Rulebook};
 use radsieve::system::Cancel;
@@ -46,11 +46,11 @@ pub struct Truth {
 impl Granule {
     /// Reads and screens a synthetic granule.
     pub fn screened(
-        program: &ReaderProgram,
+        opening: &Opening,
         file: &Path,
         rulebook: &Rulebook,
     ) -> Result<Granule, Box<dyn std::error::Error>> {
-        let review = Review::open(program, file, &ReadLimits::default())?;
+        let review = Review::open(opening, file)?;
         review.read_for(rulebook, &Cancel::new())?;
         let screened = review.screen(rulebook);
         let column = |text: &str| -> Result<Vec<f64>, Box<dyn std::error::Error>> {

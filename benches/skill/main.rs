@@ -12,6 +12,7 @@ mod tables;
 
 use std::path::{Path, PathBuf};
 
+use radsieve::granule::Opening;
 use radsieve::netcdf_files::ReaderProgram;
 use radsieve::screening::builtin;
 
@@ -25,11 +26,11 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     if files.is_empty() {
         files = samples()?;
     }
-    let program = ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve"));
+    let opening = Opening::new(ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve")));
     let rulebook = builtin()?;
     let mut granules = Vec::new();
     for file in &files {
-        granules.push(Granule::screened(&program, file, &rulebook)?);
+        granules.push(Granule::screened(&opening, file, &rulebook)?);
     }
     if fitting {
         print!("{}", fit::weights(&rulebook, &granules));
