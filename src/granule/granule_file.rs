@@ -67,7 +67,7 @@ impl Granule {
         path: &Path,
         limits: &ReadLimits,
     ) -> Result<Self, GranuleError> {
-        Opening { limits: limits.clone(), ..Opening::new(program.clone()) }.open(path)
+        Opening { limits: *limits, ..Opening::new(program.clone()) }.open(path)
     }
 
     /// The file as it was named.
