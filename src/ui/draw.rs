@@ -56,8 +56,9 @@ fn draw_evidence(app: &App, area: Rect, buffer: &mut Buffer) {
 
 /// The status line, and the hints where no line is being typed.
 fn draw_lines(app: &App, layout: &ScreenLayout, buffer: &mut Buffer) {
-    let facts = views::status_facts(app);
     let preview = views::side_preview(app);
+    // What is being chosen matters more than what has been counted.
+    let facts = preview.as_ref().map_or_else(|| views::status_facts(app), |_| Vec::new());
     let (message, tone) = match &preview {
         Some(words) => (words.as_str(), super::colour::Tone::Strong),
         None => (app.message.0.as_str(), app.message.1),

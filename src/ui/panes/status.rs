@@ -33,11 +33,10 @@ pub fn draw(view: &StatusView<'_>, theme: &Theme, line: Rect, buffer: &mut Buffe
     let Some(line) = clip(line, buffer) else { return };
     let line = Rect { x: line.x + 1.min(line.width), width: line.width.saturating_sub(2), ..line };
     let gap = if theme.ascii { " | " } else { " · " };
-    let keep = view.message.width() + usize::from(!view.message.is_empty());
-    // A message that is longer than the line does not push out what comes first of the facts.
-    let first = view.facts.first().map_or(0, |(text, _)| text.width());
+    // A long message stands for a long time: it does not push out the counts.
     let width = usize::from(line.width);
-    let mut room = width.saturating_sub(keep).max(first.min(width / 3));
+    let message = view.message.width().min(width * 3 / 5);
+    let mut room = width.saturating_sub(message + usize::from(message > 0));
     let mut shown = 0;
     for (text, _) in view.facts {
         let needed = text.width() + if shown > 0 { gap.width() } else { 0 };
