@@ -64,6 +64,7 @@ mod tests {
             unit_text: String::new(),
             apodisation,
             bad: vec![false; wavenumbers.len()],
+            noise: None,
         }
     }
 

@@ -1,5 +1,6 @@
 //! A band: one variable with a spectral dimension.
 
+use super::noise::Noise;
 use crate::spectral::ChannelAxis;
 use crate::units::{RadianceUnit, SpectralUnit, TemperatureUnit};
 
@@ -82,6 +83,8 @@ pub struct Band {
     /// For each channel whether no layer may use it: it is given up as bad, or apodising leaves it
     /// without a value.
     pub bad: Vec<bool>,
+    /// Its noise, where the file gives one; [`super::Granule::noise`] reads it.
+    pub noise: Option<Noise>,
 }
 
 impl Band {

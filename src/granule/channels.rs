@@ -90,6 +90,7 @@ mod tests {
             unit_text: String::new(),
             apodisation: Apodisation::Unknown,
             bad: vec![false; wavenumbers.len()],
+            noise: None,
         }
     }
 

@@ -64,7 +64,7 @@ impl Decoder {
     /// The number that a stored value stands for; NaN where it is missing.
     #[inline]
     pub fn decode(&self, stored: f64) -> f64 {
-        let stored = if stored < 0.0 { stored + self.wrap } else { stored };
+        let stored = self.unsigned(stored);
         let value = stored * self.scale + self.offset;
         // Written so that NaN is missing, whatever it is compared with, and so is what is infinite.
         let valid = stored >= self.stored_range.0
@@ -74,6 +74,12 @@ impl Decoder {
             && !(self.undeclared_fill && value <= UNDECLARED_FILL)
             && !self.missing.contains(&stored);
         if valid { value } else { f64::NAN }
+    }
+
+    /// The number that a stored one stands for where negative ones stand for large ones.
+    #[inline]
+    pub fn unsigned(&self, stored: f64) -> f64 {
+        if stored < 0.0 { stored + self.wrap } else { stored }
     }
 
     /// All values as numbers; strings are missing.

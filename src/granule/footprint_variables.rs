@@ -1,5 +1,6 @@
 //! Variables with one value for each footprint, or for each line or position of them.
 
+use super::decoder::Decoder;
 use super::footprint_dimensions::FootprintDimensions;
 use crate::netcdf_files::{FileIndex, Variable};
 use crate::system::clean_text;
@@ -68,13 +69,14 @@ impl FlagMeaning {
 impl FootprintVariable {
     /// The meanings that hold for a value, as read. A code that the file does not list has none.
     pub fn meanings_of(&self, value: f64) -> Vec<&str> {
-        if !value.is_finite() {
-            return Vec::new();
-        }
-        let value = value as i64;
-        let held = self.meanings.iter().filter(|meaning| meaning.holds(value));
-        held.map(|meaning| meaning.meaning.as_str()).collect()
+        held(&self.meanings, value).map(|meaning| meaning.meaning.as_str()).collect()
     }
+}
+
+/// Those of some meanings that hold for a value; none for a missing one.
+pub fn held(meanings: &[FlagMeaning], value: f64) -> impl Iterator<Item = &FlagMeaning> {
+    let all = if value.is_finite() { meanings } else { &[] };
+    all.iter().filter(move |meaning| meaning.holds(value as i64))
 }
 
 /// All variables of the footprints but the bands themselves, in the file's order. `quality` are those
@@ -135,12 +137,15 @@ fn speaks_of_quality(variable: &Variable, has_meanings: bool, is_ancillary: bool
 }
 
 /// The meanings of codes and bits; none where the three attributes do not agree.
-fn meanings(variable: &Variable) -> Vec<FlagMeaning> {
+pub fn meanings(variable: &Variable) -> Vec<FlagMeaning> {
     let words = variable.text("flag_meanings").unwrap_or_default();
     let words: Vec<&str> = words.split_whitespace().collect();
+    let decoder = Decoder::of(variable);
     let integers = |name: &str| {
         let numbers = variable.attribute(name).and_then(|value| value.numbers());
-        numbers.map(|numbers| numbers.into_iter().map(|number| number as i64).collect::<Vec<_>>())
+        // Codes and bits given as signed mean the same bits as the values do.
+        let unsigned = |number: f64| decoder.unsigned(number) as i64;
+        numbers.map(|numbers| numbers.into_iter().map(unsigned).collect::<Vec<_>>())
     };
     let (masks, values) = (integers("flag_masks"), integers("flag_values"));
     let fits = |list: &Option<Vec<i64>>| list.as_ref().is_none_or(|list| list.len() == words.len());

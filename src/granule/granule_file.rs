@@ -3,7 +3,7 @@
 use std::path::Path;
 use std::sync::{Arc, OnceLock};
 
-use super::band::{Band, Channel};
+use super::band::{Band, Channel, Quantity};
 use super::channels::{NoChannel, channel_near, channels_between};
 use super::cube::{Cube, Presence};
 use super::decoder::Decoder;
@@ -14,6 +14,7 @@ use super::footprints::FootprintGrid;
 use super::geolocation::Geolocation;
 use super::identity::Identity;
 use super::layout::Layout;
+use super::layout_file::BandEntry;
 use super::opening::Opening;
 use super::problem::Problem;
 use super::side_by_side::side_by_side;
@@ -45,6 +46,10 @@ pub(super) struct BandSource {
     pub layout: Layout,
     /// The channels given up as bad, before apodising took those beside them as well.
     pub bad: Vec<bool>,
+    /// The spectral dimension, as a place in the file's list.
+    pub spectral: usize,
+    /// What the layout file says of the band.
+    pub said: BandEntry,
 }
 
 /// How far reading has come.
@@ -261,6 +266,24 @@ impl Granule {
         let (start, count) = self.sources[band].layout.spectrum(&position);
         let samples = self.reader.read(self.band_variable(band), &start, &count)?;
         Ok(self.cube.decode_spectrum(band, &samples))
+    }
+
+    /// The noise of a footprint's channels in a band, as a standard deviation in mW m-2 sr-1 (cm-1)-1
+    /// or K by the band's quantity, missing as NaN; nothing where the file does not give it. It is that
+    /// of the spectra in the file, before anything is done on request.
+    pub fn noise(&self, band: usize, footprint: usize) -> Result<Option<Vec<f64>>, GranuleError> {
+        let Some(noise) = &self.bands[band].noise else { return Ok(None) };
+        let variable = &self.index().variables[noise.place];
+        let (start, count) = noise.layout.spectrum(&self.footprints.position(footprint));
+        let samples = self.reader.read(variable, &start, &count)?;
+        let mut values = Decoder::of(variable).decode_all(&samples);
+        if let Quantity::Radiance(unit) = &noise.quantity {
+            let wavenumbers = self.bands[band].axis.wavenumbers();
+            for (value, &wavenumber) in values.iter_mut().zip(wavenumbers) {
+                *value *= unit.factor_at(wavenumber);
+            }
+        }
+        Ok(Some(values))
     }
 
     /// Reads a variable of the footprints: one number for each, missing as NaN. `name` is its path,

@@ -41,6 +41,10 @@ pub struct BandEntry {
     pub axis_dimension: Option<String>,
     /// How its spectra are apodised.
     pub apodisation: Option<String>,
+    /// The variable with its noise; an empty name means that the file has none.
+    pub noise: Option<String>,
+    /// The unit of that variable.
+    pub noise_unit: Option<String>,
     /// Channels, counted from 0 in the file's order, that no layer may use.
     pub bad_channels: Option<Vec<usize>>,
 }
@@ -55,7 +59,7 @@ pub enum ApodiseBy {
 
 const KEYS: [&str; 5] = ["footprint_dimensions", "quality", "apodise", "bands", "geolocation"];
 
-const BAND_KEYS: [&str; 8] = [
+const BAND_KEYS: [&str; 10] = [
     "variable",
     "name",
     "unit",
@@ -63,6 +67,8 @@ const BAND_KEYS: [&str; 8] = [
     "axis_unit",
     "axis_dimension",
     "apodisation",
+    "noise",
+    "noise_unit",
     "bad_channels",
 ];
 
@@ -142,6 +148,8 @@ mod tests {
             axis_unit = "cm-1"
             axis_dimension = "channel"
             apodisation = "none"
+            noise = "spread"
+            noise_unit = "mW m-2 sr-1 (cm-1)-1"
             bad_channels = [0, 5]
             [geolocation]
             lat = "y"

@@ -72,6 +72,27 @@ fn what_was_found_opens_as_the_same_granule() {
         same_again(&file, &format!("apodise = \"hamming\"\n{layout}"));
     }
     same_again(&file(plain), "");
+    let noisy = file(|writer| {
+        plain(writer);
+        put(writer, radiance("nedn", &["nu"], UNIT), vec![0.1_f32, 0.2, 0.3]);
+    });
+    same_again(&noisy, "");
+    same_again(&noisy, "[[bands]]\nvariable = \"radiance\"\nnoise = \"\"\n");
+}
+
+#[test]
+fn noise_is_the_variable_said() {
+    let file = file(|writer| {
+        plain(writer);
+        put(writer, radiance("spread", &["nu"], ""), vec![0.1_f32, 0.2, 0.3]);
+    });
+    let band = |lines: &str| format!("[[bands]]\nvariable = \"radiance\"\n{lines}");
+    let unit = format!("noise = \"spread\"\nnoise_unit = \"{UNIT}\"\n");
+    let granule = open(&file, &band(&unit)).unwrap();
+    assert_eq!(granule.noise(0, 0).unwrap().unwrap()[2], f64::from(0.3_f32));
+    assert!(refused(&file, &band("noise = \"spread\"")).contains("noise: no unit is given"));
+    let error = refused(&file, &band("noise = \"spread\"\nnoise_unit = \"K\""));
+    assert!(error.contains("brightness temperature where the band is radiance"), "{error}");
 }
 
 fn same_again(file: &File, layout: &str) {

@@ -55,6 +55,10 @@ fn write_band(text: &mut String, granule: &Granule, band: &Band, bad: &[bool]) {
         other => other,
     };
     line(text, "apodisation", &quoted(in_file.label()));
+    line(text, "noise", &quoted(band.noise.as_ref().map_or("", |noise| &noise.variable)));
+    if let Some(noise) = &band.noise {
+        line(text, "noise_unit", &quoted(&noise.unit_text));
+    }
     let bad = bad.iter().enumerate().filter(|(_, bad)| **bad);
     let bad: Vec<String> = bad.map(|(channel, _)| channel.to_string()).collect();
     line(text, "bad_channels", &format!("[{}]", bad.join(", ")));

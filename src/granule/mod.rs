@@ -7,6 +7,7 @@
 mod apodisation;
 mod apodise;
 mod band;
+mod channel_quality;
 mod channels;
 mod cube;
 mod decoder;
@@ -23,6 +24,7 @@ mod layout;
 mod layout_file;
 mod layout_text;
 mod named_variable;
+mod noise;
 mod open;
 mod opening;
 mod problem;
@@ -43,10 +45,13 @@ pub use granule_file::{Granule, Progress};
 pub use identity::Identity;
 pub use layout_file::{ApodiseBy, BandEntry, LayoutFile};
 pub use layout_text::layout_text;
+pub use noise::Noise;
 pub use opening::Opening;
 pub use problem::{Problem, ProblemKind};
 pub use time::{TimeScale, TimeUnit};
 
+#[cfg(test)]
+mod found_tests;
 #[cfg(test)]
 mod layout_tests;
 #[cfg(test)]

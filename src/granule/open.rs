@@ -5,6 +5,7 @@ use std::sync::{Arc, OnceLock};
 use super::apodisation;
 use super::apodise;
 use super::band::Band;
+use super::channel_quality;
 use super::cube::{BandStorage, Cube};
 use super::decoder::Decoder;
 use super::error::{GranuleError, Setback};
@@ -15,8 +16,9 @@ use super::footprints::FootprintGrid;
 use super::geolocation;
 use super::granule_file::{BandSource, Granule};
 use super::layout::{Layout, Role};
-use super::layout_file::{ApodiseBy, LayoutFile};
+use super::layout_file::{ApodiseBy, BandEntry, LayoutFile};
 use super::named_variable::{named_dimension, named_variable};
+use super::noise::{Noise, NoiseSearch};
 use super::problem::Problem;
 use super::slabs::rows_per_slab;
 use super::spectral_axis;
@@ -58,6 +60,15 @@ pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Gran
             return Err(ReadError::new(reader.path(), fault).into());
         }
         let rows = rows_per_slab(index, variable, &source.layout);
+        let search = NoiseSearch {
+            index,
+            band: source.variable,
+            spectral: source.spectral,
+            quantity: &band.quantity,
+            dimensions: &dimensions,
+        };
+        band.noise = noise(&search, &source.said, &mut problems)
+            .map_err(|reason| contradicted(&reader, &reason))?;
         let decoder = Decoder::of(variable).with_undeclared_fill();
         let apodise = match layout.apodise {
             Some(ApodiseBy::Hamming) => apodise::hamming(&mut band, &mut problems),
@@ -95,6 +106,22 @@ pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Gran
         identity: OnceLock::new(),
         reader,
     })
+}
+
+/// A band's noise, by what is said of it or by what is found.
+fn noise(
+    search: &NoiseSearch<'_>,
+    said: &BandEntry,
+    problems: &mut Vec<Problem>,
+) -> Result<Option<Noise>, String> {
+    match said.noise.as_deref() {
+        Some("") => Ok(None),
+        Some(name) => search
+            .said(name, said.noise_unit.as_deref())
+            .map(Some)
+            .map_err(|reason| format!("band `{}`: noise: {reason}", said.variable)),
+        None => Ok(search.find(problems)),
+    }
 }
 
 /// The quality variables that the layout file names; nothing where it leaves that to the file.
@@ -216,7 +243,17 @@ fn settle(
                 Some(words) => apodisation::from_words(words),
                 None => apodisation::find(index, variable, axis_variable, problems),
             },
-            bad: bad_channels(axis.len(), said.bad_channels.as_deref().unwrap_or_default())?,
+            bad: bad_channels(
+                axis.len(),
+                &match said.bad_channels {
+                    Some(listed) => listed,
+                    None => {
+                        let spectral = axis_candidate.dimension;
+                        channel_quality::find(reader, variable, spectral, problems)?
+                    }
+                },
+            )?,
+            noise: None,
             axis,
         };
         return Ok(Some((axis_candidate.dimension, band)));
@@ -259,7 +296,13 @@ fn join(
             None => FootprintDimensions(footprints),
         };
         if let Some(layout) = layout(index, variable, spectral, &dimensions) {
-            let source = BandSource { variable: candidate.variable, layout, bad: band.bad.clone() };
+            let source = BandSource {
+                variable: candidate.variable,
+                layout,
+                bad: band.bad.clone(),
+                spectral,
+                said: candidate.said.clone().unwrap_or_default(),
+            };
             *chosen = Some(Chosen { dimensions, bands: vec![(source, band)] });
         }
         return Ok(());
@@ -282,7 +325,13 @@ fn join(
                 problems.push(Problem::guess(what, &variable.path, ""));
             }
             chosen.bands.push((
-                BandSource { variable: candidate.variable, layout, bad: band.bad.clone() },
+                BandSource {
+                    variable: candidate.variable,
+                    layout,
+                    bad: band.bad.clone(),
+                    spectral,
+                    said: candidate.said.clone().unwrap_or_default(),
+                },
                 band,
             ));
         }

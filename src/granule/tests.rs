@@ -23,12 +23,12 @@ pub(super) fn file(write: impl FnOnce(&mut NetcdfWriter)) -> File {
     File { _folder: folder, path }
 }
 
-fn open(path: &Path) -> Result<Granule, GranuleError> {
+pub(super) fn open(path: &Path) -> Result<Granule, GranuleError> {
     Granule::open(&ReaderProgram::in_process(), path, &ReadLimits::default())
 }
 
 /// A granule whose file stays there as long as it does.
-struct Opened {
+pub(super) struct Opened {
     granule: Granule,
     _file: File,
 }
@@ -40,7 +40,7 @@ impl std::ops::Deref for Opened {
     }
 }
 
-fn opened(write: impl FnOnce(&mut NetcdfWriter)) -> Opened {
+pub(super) fn opened(write: impl FnOnce(&mut NetcdfWriter)) -> Opened {
     let file = file(write);
     Opened { granule: open(&file.path).unwrap(), _file: file }
 }

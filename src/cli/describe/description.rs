@@ -3,7 +3,7 @@
 use serde::Serialize;
 
 use crate::granule::{Band, Decoder, FootprintVariable, Granule, Problem, Quantity};
-use crate::netcdf_files::{FileIndex, Storage, Variable};
+use crate::netcdf_files::{Storage, Variable};
 use crate::system::clean_text;
 use crate::units::RadianceUnit;
 
@@ -66,7 +66,19 @@ pub struct BandDescription {
     pub axis_variable: String,
     pub axis_units: &'static str,
     pub apodisation: String,
+    pub noise: Option<NoiseDescription>,
+    /// Channels that no layer takes.
+    pub bad_channels: usize,
     pub storage: StorageDescription,
+}
+
+/// The noise of a band.
+#[derive(Debug, Serialize)]
+pub struct NoiseDescription {
+    pub variable: String,
+    pub units_in_file: String,
+    /// The footprints' dimensions that it differs along.
+    pub along: Vec<String>,
 }
 
 /// How values are stored.
@@ -124,11 +136,7 @@ impl Description {
             title: granule.title(),
             source: granule.source(),
             footprints: Footprints::of(granule),
-            bands: bands
-                .map(|(place, band)| {
-                    BandDescription::of(band, granule.index(), granule.band_variable(place))
-                })
-                .collect(),
+            bands: bands.map(|(place, band)| BandDescription::of(granule, place, band)).collect(),
             geolocation: fields(granule),
             variables: granule.variables().iter().map(VariableDescription::of).collect(),
             problems: granule.problems().iter().map(ProblemDescription::of).collect(),
@@ -150,7 +158,9 @@ impl Footprints {
 }
 
 impl BandDescription {
-    fn of(band: &Band, index: &FileIndex, variable: &Variable) -> Self {
+    fn of(granule: &Granule, place: usize, band: &Band) -> Self {
+        let (index, variable) = (granule.index(), granule.band_variable(place));
+        let names = granule.footprints().names();
         let (first, last) = band.range();
         let spacing = band.spacing();
         let understood = match &band.quantity {
@@ -174,6 +184,12 @@ impl BandDescription {
             axis_variable: clean_text(&band.axis_variable),
             axis_units: band.axis_unit.label(),
             apodisation: band.apodisation.label().to_owned(),
+            noise: band.noise.as_ref().map(|noise| NoiseDescription {
+                variable: clean_text(&noise.variable),
+                units_in_file: clean_text(&noise.unit_text),
+                along: noise.along.iter().map(|&place| clean_text(&names[place])).collect(),
+            }),
+            bad_channels: band.bad.iter().filter(|bad| **bad).count(),
             storage: StorageDescription::of(variable, &variable.storage),
         }
     }

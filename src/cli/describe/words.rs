@@ -87,6 +87,16 @@ fn print_band(band: &BandDescription, out: &mut impl Write) -> io::Result<()> {
     writeln!(out, "    unit in the file {:?}, {used}", band.units_in_file)?;
     writeln!(out, "    spectral axis `{}` in {}", band.axis_variable, band.axis_units)?;
     writeln!(out, "    apodisation {}", band.apodisation)?;
+    if let Some(noise) = &band.noise {
+        let along = match noise.along.is_empty() {
+            true => String::new(),
+            false => format!(", for each {}", noise.along.join(", ")),
+        };
+        writeln!(out, "    noise `{}` in {:?}{along}", noise.variable, noise.units_in_file)?;
+    }
+    if band.bad_channels > 0 {
+        writeln!(out, "    {} channels are in no layer", band.bad_channels)?;
+    }
     writeln!(out, "    stored as {}", storage(band))
 }
 
