@@ -58,6 +58,13 @@ fn problems_key() -> String {
 
 /// Next, previous, next not signed off, or the one under the Tray's cursor.
 pub fn turn(app: &mut App, action: Action) -> Vec<Job> {
+    // An export that waits for the last decisions would be lost with the granule. Where they
+    // cannot be written at all, waiting would hold the person here for ever.
+    let export_waits = app.bench().is_some_and(|bench| bench.export_waits.is_some());
+    if export_waits && app.write_failure().is_none() {
+        app.say("one moment: the mask is written as soon as the last decision is kept");
+        return Vec::new();
+    }
     // With nothing on the table, the Tray's own cursor tells where one is.
     let on_table = app.current_entry();
     let here = on_table.or_else(|| (!app.tray.is_empty()).then_some(app.tray_cursor));
