@@ -1,9 +1,9 @@
 //! `radsieve` screens infrared-sounder granules: which footprints may a retrieval use?
 //!
 //! ```text
-//!  granule.nc --reader process--> index --granule--> Granule --layers--> Layer --> what the screen shows
-//!                                                       |                             |
-//!                                        key -> ui -> Action --> review.decide        |
+//!  granule.nc --reader process--> index --granule--> Granule --layers--> Layer --screening--> Evidence, doubt
+//!                                                       |                                       |
+//!                                        key -> ui -> Action --> review.decide <--- screen (as a test, not a person)
 //!                                                       |              | appends, synced by a writer thread
 //!                                                       v              v
 //!                                                     screen      ledger files --replay--> flags --export--> mask.nc

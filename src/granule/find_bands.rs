@@ -4,7 +4,7 @@ use super::band::Quantity;
 use super::layout_file::{BandEntry, LayoutFile};
 use super::named_variable::named_variable;
 use super::problem::Problem;
-use super::spectral_axis::{self, AxisCandidate};
+use super::spectral_axis::{self, AxisCandidate, PossibleAxes};
 use crate::netcdf_files::{FileIndex, Variable};
 use crate::units::{RadianceUnit, SpectralDensity, TemperatureUnit};
 
@@ -62,6 +62,7 @@ const OTHER_THINGS: [&str; 17] = [
 
 /// Looks through all variables.
 pub fn search(index: &FileIndex, problems: &mut Vec<Problem>) -> Search {
+    let possible = PossibleAxes::of(index);
     let mut found = Search::default();
     for (place, variable) in index.variables.iter().enumerate() {
         if !variable.kind.is_number() || variable.dimensions.len() < 2 {
@@ -71,7 +72,7 @@ pub fn search(index: &FileIndex, problems: &mut Vec<Problem>) -> Search {
         if named.is_none() && means_something_else(variable) {
             continue;
         }
-        let axes = spectral_axis::candidates(index, variable);
+        let axes = spectral_axis::candidates(index, &possible, variable);
         match quantity(variable, named.as_deref(), !axes.is_empty(), problems) {
             Ok(Some(quantity)) if !axes.is_empty() => {
                 let named = named.is_some();
@@ -127,7 +128,7 @@ fn said_candidate(
     }
     let axes = match spectral_axis::said(index, variable, entry)? {
         Some(axis) => vec![axis],
-        None => spectral_axis::candidates(index, variable),
+        None => spectral_axis::candidates(index, &PossibleAxes::of(index), variable),
     };
     if axes.is_empty() {
         return Err("it has no spectral axis that can be found; say `axis`".into());

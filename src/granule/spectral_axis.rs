@@ -39,17 +39,40 @@ const NAME_PARTS: [&str; 8] =
 /// Axes of thermal sounders lie well inside of this, cm-1; a length in metres of anything else does not.
 const PLAUSIBLE: std::ops::RangeInclusive<f64> = 100.0..=10_000.0;
 
+/// A variable of numbers along one dimension: all that an axis can be.
+struct OneDimensional {
+    variable: usize,
+    dimension: usize,
+    unit: Option<SpectralUnit>,
+}
+
+/// Everything in a file that can be an axis. Made once, because reading the units anew for each
+/// variable would take as long as a file with thousands of variables likes.
+pub struct PossibleAxes(Vec<OneDimensional>);
+
+impl PossibleAxes {
+    /// Looks through all variables.
+    pub fn of(index: &FileIndex) -> Self {
+        let possible = |(variable, axis): (usize, &Variable)| {
+            let &[dimension] = axis.dimensions.as_slice() else { return None };
+            let unit = || axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok());
+            axis.kind.is_number().then(|| OneDimensional { variable, dimension, unit: unit() })
+        };
+        Self(index.variables.iter().enumerate().filter_map(possible).collect())
+    }
+}
+
 /// The spectral axes that a variable's dimensions may have, the best first.
-pub fn candidates(index: &FileIndex, variable: &Variable) -> Vec<AxisCandidate> {
+pub fn candidates(
+    index: &FileIndex,
+    possible: &PossibleAxes,
+    variable: &Variable,
+) -> Vec<AxisCandidate> {
     let named = variable.text("coordinates").unwrap_or_default();
     let mut found: Vec<AxisCandidate> = Vec::new();
-    for (place, axis) in index.variables.iter().enumerate() {
-        let &[dimension] = axis.dimensions.as_slice() else { continue };
+    for &OneDimensional { variable: place, dimension, unit } in &possible.0 {
         let Some((own, look_alike)) = alike(index, variable, dimension) else { continue };
-        if !axis.kind.is_number() {
-            continue;
-        }
-        let unit = axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok());
+        let axis = &index.variables[place];
         if let Some(rank) = rank(index, axis, dimension, unit, &named) {
             found.push(AxisCandidate { dimension: own, variable: place, unit, rank, look_alike });
         }
