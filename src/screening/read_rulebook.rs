@@ -385,7 +385,15 @@ fn lookup(table: &mut TableReader<'_, '_>) -> Option<Table> {
     };
     let (at, values) = match over.len() {
         1 => (vec![table.numbers("at", at)?], table.numbers("values", values)?),
-        2 => (rows(table, "at", at)?, rows(table, "values", values)?.concat()),
+        2 => {
+            let (at, values) = (rows(table, "at", at)?, rows(table, "values", values)?);
+            let across = at.get(1).map_or(0, Vec::len);
+            if let Some(row) = values.iter().find(|row| row.len() != across) {
+                table.wrong_here(format!("a row of {} values for {across} points", row.len()));
+                return None;
+            }
+            (at, values.concat())
+        }
         _ => {
             table.wrong_here("a table is over one expression or two");
             return None;

@@ -109,6 +109,11 @@ fn mistakes_are_pointed_at() {
             "threshold = { over = \"window\", at = [1, 2], values = [1] }",
             "1 values do not fit 2 points",
         ),
+        (
+            "threshold = 270",
+            "threshold = { over = [\"window\", \"lat\"], at = [[1, 2], [3, 4]], values = [[1, 2, 3], [4]] }",
+            "a row of 3 values for 2 points",
+        ),
         ("threshold = 270", "threshold = 270\non = [\"see\"]", "there is no surface see"),
         ("[[families]]", "[families", "small.toml:9: "),
     ] {
