@@ -4,6 +4,7 @@ use super::decoder::Decoder;
 use super::error::Setback;
 use super::footprint_variables::{FlagMeaning, held, meanings};
 use super::problem::Problem;
+use super::truth::is_truth;
 use crate::netcdf_files::{FileReader, Variable};
 
 /// Words of a flag's meaning that give a channel up.
@@ -23,7 +24,7 @@ pub fn find(
     problems: &mut Vec<Problem>,
 ) -> Result<Vec<usize>, Setback> {
     let mut bad = Vec::new();
-    for variable in &reader.index().variables {
+    for variable in reader.index().variables.iter().filter(|variable| !is_truth(variable)) {
         let is_list = variable.dimensions == [spectral] && variable.kind.is_number();
         let meanings = if is_list { meanings(variable) } else { Vec::new() };
         if !meanings.iter().any(|meaning| gives_up(&meaning.meaning)) {

@@ -167,3 +167,17 @@ fn flags_of_footprints_decode_to_their_meanings_whatever_their_sign() {
     assert_eq!(meanings(values[2]), ["stray_light"]);
     assert!(meanings(values[3]).is_empty());
 }
+
+#[test]
+fn the_truth_of_a_synthetic_granule_is_not_taken_for_what_an_instrument_tells() {
+    let granule = opened(|writer| {
+        plain(writer);
+        put(writer, radiance("/truth/nedn", &["nu"], UNIT), vec![0.1_f32; 3]);
+        let flags = VariableDraft::new("/truth/channel_defects", ValueKind::I8, &["nu"])
+            .attribute("flag_masks", vec![1_i8, 2])
+            .attribute("flag_meanings", "noisy dead");
+        put(writer, flags, vec![1_i8, 2, 0]);
+    });
+    assert_eq!(granule.bands()[0].noise, None);
+    assert_eq!(granule.bands()[0].bad, [false; 3]);
+}

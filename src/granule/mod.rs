@@ -32,6 +32,7 @@ mod side_by_side;
 mod slabs;
 mod spectral_axis;
 mod time;
+mod truth;
 
 pub use band::{Apodisation, Band, Channel, Quantity};
 pub use channels::{NoChannel, channel_near, channels_between};

@@ -6,6 +6,7 @@ use super::footprint_dimensions::FootprintDimensions;
 use super::layout::{Layout, Role};
 use super::named_variable::named_variable;
 use super::problem::Problem;
+use super::truth::is_truth;
 use crate::netcdf_files::{FileIndex, Variable};
 
 /// The noise of a band: a standard deviation for each channel, for some files in each detector.
@@ -50,7 +51,8 @@ impl NoiseSearch<'_> {
     pub fn find(&self, problems: &mut Vec<Problem>) -> Option<Noise> {
         let band = &self.index.variables[self.band];
         let candidates = self.index.variables.iter().enumerate().filter_map(|(place, variable)| {
-            let (layout, along) = self.layout(variable).filter(|_| place != self.band)?;
+            let (layout, along) =
+                self.layout(variable).filter(|_| place != self.band && !is_truth(variable))?;
             let evidence = self.evidence(variable)?;
             let elsewhere = variable.group != band.group;
             Some(((evidence, elsewhere, place), (place, layout, along)))
