@@ -93,11 +93,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         let answer = json!({ "schema": 1, "rulebook": head(&rulebook), "files": entries });
         writeln!(std::io::stdout(), "{answer}")?;
     }
-    Ok(match failed {
-        0 => Exit::Done,
-        failed if failed < files.len() => Exit::SomeFailed,
-        _ => Exit::Failed,
-    })
+    Ok(Exit::of_many(files.len() - failed, failed))
 }
 
 fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {

@@ -49,23 +49,10 @@ fn reason_against(band: &Band) -> Option<String> {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::spectral::ChannelAxis;
-    use crate::units::{RadianceUnit, SpectralUnit, TemperatureUnit};
+    use crate::units::TemperatureUnit;
 
     fn band(apodisation: Apodisation, wavenumbers: &[f64]) -> Band {
-        Band {
-            name: "b".into(),
-            variable: "b".into(),
-            axis: ChannelAxis::new(wavenumbers.to_vec()).unwrap(),
-            axis_variable: "nu".into(),
-            axis_unit: SpectralUnit::PerCentimetre,
-            dimension: "nu".into(),
-            quantity: Quantity::Radiance(RadianceUnit::WORKING),
-            unit_text: String::new(),
-            apodisation,
-            bad: vec![false; wavenumbers.len()],
-            noise: None,
-        }
+        Band::of_wavenumbers(wavenumbers, apodisation)
     }
 
     const EVEN: [f64; 7] = [700.0, 701.0, 702.0, 900.0, 901.0, 902.0, 903.0];

@@ -126,3 +126,23 @@ pub struct Channel {
     /// Its wavenumber, cm-1.
     pub wavenumber: f64,
 }
+
+#[cfg(test)]
+impl Band {
+    /// A band of radiances in the working unit, for tests.
+    pub(super) fn of_wavenumbers(wavenumbers: &[f64], apodisation: Apodisation) -> Self {
+        Self {
+            name: "b".into(),
+            variable: "b".into(),
+            axis: ChannelAxis::new(wavenumbers.to_vec()).unwrap(),
+            axis_variable: "nu".into(),
+            axis_unit: SpectralUnit::PerCentimetre,
+            dimension: "nu".into(),
+            quantity: Quantity::Radiance(RadianceUnit::WORKING),
+            unit_text: String::new(),
+            apodisation,
+            bad: vec![false; wavenumbers.len()],
+            noise: None,
+        }
+    }
+}

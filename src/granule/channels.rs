@@ -74,24 +74,10 @@ pub fn channels_between(bands: &[Band], low: f64, high: f64) -> Vec<Channel> {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::granule::band::{Apodisation, Quantity};
-    use crate::spectral::ChannelAxis;
-    use crate::units::{RadianceUnit, SpectralUnit};
+    use crate::granule::band::Apodisation;
 
     fn band(wavenumbers: &[f64]) -> Band {
-        Band {
-            name: "b".into(),
-            variable: "b".into(),
-            axis: ChannelAxis::new(wavenumbers.to_vec()).unwrap(),
-            axis_variable: "nu".into(),
-            axis_unit: SpectralUnit::PerCentimetre,
-            dimension: "nu".into(),
-            quantity: Quantity::Radiance(RadianceUnit::WORKING),
-            unit_text: String::new(),
-            apodisation: Apodisation::Unknown,
-            bad: vec![false; wavenumbers.len()],
-            noise: None,
-        }
+        Band::of_wavenumbers(wavenumbers, Apodisation::Unknown)
     }
 
     #[test]

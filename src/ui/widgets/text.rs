@@ -1,5 +1,7 @@
 //! Text of a limited width. Widths are columns of the terminal, not bytes or letters.
 
+use std::borrow::Cow;
+
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::style::Style;
@@ -14,35 +16,33 @@ pub(in crate::ui) fn clip(area: Rect, buffer: &Buffer) -> Option<Rect> {
 
 /// The text if it fits, else its beginning with a sign that something was cut.
 pub(in crate::ui) fn cut(text: &str, width: usize, ascii: bool) -> String {
-    if ascii && !text.is_ascii() {
-        return cut(&spelled_out(text), width, ascii);
-    }
-    if text.width() <= width {
-        return text.to_string();
-    }
-    if width == 0 {
-        return String::new();
-    }
-    let mut kept = fitting(text, width - 1).to_string();
-    kept.push(if ascii { '~' } else { '…' });
-    kept
+    shortened(text, width, ascii, |text, sign, room| format!("{}{sign}", fitting(text, room)))
 }
 
 /// The text if it fits, else its end with a sign that something was cut.
 pub(in crate::ui) fn cut_front(text: &str, width: usize, ascii: bool) -> String {
-    if ascii && !text.is_ascii() {
-        return cut_front(&spelled_out(text), width, ascii);
-    }
+    shortened(text, width, ascii, |text, sign, room| {
+        let mut ends = text.grapheme_indices(true).map(|(at, _)| &text[at..]);
+        format!("{sign}{}", ends.find(|end| end.width() <= room).unwrap_or(""))
+    })
+}
+
+/// The text if it fits, else what `shorten` makes of it, the sign and the room beside the sign.
+fn shortened(
+    text: &str,
+    width: usize,
+    ascii: bool,
+    shorten: impl FnOnce(&str, char, usize) -> String,
+) -> String {
+    let text =
+        if ascii && !text.is_ascii() { Cow::Owned(spelled_out(text)) } else { Cow::Borrowed(text) };
     if text.width() <= width {
-        return text.to_string();
+        return text.into_owned();
     }
-    if width == 0 {
-        return String::new();
+    match width.checked_sub(1) {
+        Some(room) => shorten(&text, if ascii { '~' } else { '…' }, room),
+        None => String::new(),
     }
-    let mut kept = String::from(if ascii { '~' } else { '…' });
-    let ends = text.grapheme_indices(true).map(|(at, _)| &text[at..]);
-    kept.push_str(ends.into_iter().find(|end| end.width() < width).unwrap_or(""));
-    kept
 }
 
 /// A text in ASCII alone, for terminals without more.
