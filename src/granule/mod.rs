@@ -9,6 +9,7 @@ mod apodise;
 mod band;
 mod channel_quality;
 mod channels;
+mod choose_bands;
 mod cube;
 mod decoder;
 mod error;

@@ -2,26 +2,22 @@
 
 use std::sync::{Arc, OnceLock};
 
-use super::apodisation;
 use super::apodise;
-use super::band::Band;
-use super::channel_quality;
+use super::choose_bands::{choose, contradicted};
 use super::cube::{BandStorage, Cube};
 use super::decoder::Decoder;
-use super::error::{GranuleError, Setback};
-use super::find_bands::{self, BandCandidate, Search};
+use super::error::GranuleError;
+use super::find_bands;
 use super::footprint_dimensions::FootprintDimensions;
 use super::footprint_variables;
 use super::footprints::FootprintGrid;
 use super::geolocation;
-use super::granule_file::{BandSource, Granule};
-use super::layout::{Layout, Role};
+use super::granule_file::Granule;
 use super::layout_file::{ApodiseBy, BandEntry, LayoutFile};
-use super::named_variable::{named_dimension, named_variable};
+use super::named_variable::named_variable;
 use super::noise::{Noise, NoiseSearch};
 use super::problem::Problem;
 use super::slabs::rows_per_slab;
-use super::spectral_axis;
 use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadFault, Variable};
 
 /// More footprints than any granule has; the screen and the layers hold numbers for each.
@@ -141,255 +137,6 @@ fn said_quality(
     names.iter().map(place).collect::<Result<_, String>>().map(Some)
 }
 
-/// The layout file and the file do not agree.
-fn contradicted(reader: &FileReader, reason: &str) -> GranuleError {
-    GranuleError::not_usable(reader.path(), format!("does not fit the layout file: {reason}"))
-}
-
-/// Bands that lie over the same footprints.
-struct Chosen {
-    dimensions: FootprintDimensions,
-    bands: Vec<(BandSource, Band)>,
-}
-
-/// The first candidate that can be read settles the footprints; others join where they fit.
-fn choose(
-    reader: &FileReader,
-    search: &mut Search,
-    layout: &LayoutFile,
-    problems: &mut Vec<Problem>,
-) -> Result<Chosen, GranuleError> {
-    let index = reader.index();
-    let mut chosen: Option<Chosen> = None;
-    let any_named = search.candidates.iter().any(|candidate| candidate.named);
-    for candidate in std::mem::take(&mut search.candidates) {
-        let variable = &index.variables[candidate.variable];
-        if any_named && !candidate.named {
-            let what = "looks like a spectrum, but others have a standard_name that says so";
-            problems.push(Problem::note(what, &variable.path, "left out"));
-            continue;
-        }
-        match settle(reader, &candidate, problems) {
-            Ok(Some((spectral, band))) => {
-                join(index, &mut chosen, &candidate, spectral, band, layout, problems)
-                    .map_err(|reason| contradicted(reader, &reason))?;
-            }
-            Ok(None) if candidate.said.is_some() => {
-                let reason = format!("band `{}` has no spectral axis", variable.path);
-                return Err(contradicted(reader, &reason));
-            }
-            Ok(None) => search.unusable.push(format!("`{}` has no spectral axis", variable.path)),
-            Err(Setback::Variable(reason)) if candidate.said.is_some() => {
-                return Err(contradicted(reader, &format!("band `{}`: {reason}", variable.path)));
-            }
-            Err(Setback::Variable(reason)) => {
-                search.unusable.push(format!("`{}`: {reason}", variable.path));
-            }
-            Err(Setback::File(error)) => return Err(error.into()),
-        }
-    }
-    match chosen {
-        Some(mut chosen) => {
-            for unusable in &search.unusable {
-                problems.push(Problem::note(&format!("left out: {unusable}"), "", ""));
-            }
-            // The surest candidates came first; bands are listed in the file's order, or the layout's.
-            if layout.bands.is_empty() {
-                chosen.bands.sort_by_key(|(source, _)| source.variable);
-            }
-            Ok(chosen)
-        }
-        None => {
-            Err(GranuleError::not_usable(reader.path(), nothing_found(index, &search.unusable)))
-        }
-    }
-}
-
-/// The spectral dimension and the band, by the first of its axes that holds up.
-fn settle(
-    reader: &FileReader,
-    candidate: &BandCandidate,
-    problems: &mut Vec<Problem>,
-) -> Result<Option<(usize, Band)>, Setback> {
-    let index = reader.index();
-    let variable = &index.variables[candidate.variable];
-    for axis_candidate in &candidate.axes {
-        let Some((axis, unit)) = spectral_axis::read(reader, axis_candidate, problems)? else {
-            continue;
-        };
-        let axis_variable = &index.variables[axis_candidate.variable];
-        if axis_candidate.rank >= 3 {
-            let what =
-                format!("`{}` is taken for its spectral axis by its unit", axis_variable.path);
-            problems.push(Problem::guess(&what, &variable.path, "a standard_name would say it"));
-        }
-        if axis_candidate.look_alike {
-            let what = format!(
-                "`{}` is taken for its spectral axis by the name and length of its dimension",
-                axis_variable.path
-            );
-            problems.push(Problem::guess(&what, &variable.path, "a layout file would say it"));
-        }
-        let said = candidate.said.clone().unwrap_or_default();
-        let band = Band {
-            name: said.name.as_deref().map(find_bands::valid_name).unwrap_or_default(),
-            variable: variable.path.clone(),
-            axis_variable: axis_variable.path.clone(),
-            axis_unit: unit,
-            dimension: index.dimensions[axis_candidate.dimension].name.clone(),
-            quantity: candidate.quantity.clone(),
-            unit_text: said.unit.or_else(|| variable.text("units")).unwrap_or_default(),
-            apodisation: match &said.apodisation {
-                Some(words) => apodisation::from_words(words),
-                None => apodisation::find(index, variable, axis_variable, problems),
-            },
-            bad: bad_channels(
-                axis.len(),
-                &match said.bad_channels {
-                    Some(listed) => listed,
-                    None => {
-                        let spectral = axis_candidate.dimension;
-                        channel_quality::find(reader, variable, spectral, problems)?
-                    }
-                },
-            )?,
-            noise: None,
-            axis,
-        };
-        return Ok(Some((axis_candidate.dimension, band)));
-    }
-    Ok(None)
-}
-
-/// For each channel whether it is among the ones listed.
-fn bad_channels(channels: usize, listed: &[usize]) -> Result<Vec<bool>, Setback> {
-    let mut bad = vec![false; channels];
-    for &channel in listed {
-        let Some(place) = bad.get_mut(channel) else {
-            let reason = format!("bad_channels: {channel}, but there are {channels} channels");
-            return Err(Setback::Variable(reason));
-        };
-        *place = true;
-    }
-    Ok(bad)
-}
-
-/// Adds a band to the chosen ones, or says why it is left out.
-///
-/// # Errors
-/// It does not fit what the layout file says; in words.
-fn join(
-    index: &FileIndex,
-    chosen: &mut Option<Chosen>,
-    candidate: &BandCandidate,
-    spectral: usize,
-    band: Band,
-    layout_file: &LayoutFile,
-    problems: &mut Vec<Problem>,
-) -> Result<(), String> {
-    let variable = &index.variables[candidate.variable];
-    let footprints: Vec<usize> =
-        variable.dimensions.iter().copied().filter(|&dimension| dimension != spectral).collect();
-    let Some(chosen) = chosen else {
-        let dimensions = match &layout_file.footprint_dimensions {
-            Some(names) => said_dimensions(index, &footprints, names)?,
-            None => FootprintDimensions(footprints),
-        };
-        if let Some(layout) = layout(index, variable, spectral, &dimensions) {
-            let source = BandSource {
-                variable: candidate.variable,
-                layout,
-                bad: band.bad.clone(),
-                spectral,
-                said: candidate.said.clone().unwrap_or_default(),
-            };
-            *chosen = Some(Chosen { dimensions, bands: vec![(source, band)] });
-        }
-        return Ok(());
-    };
-    let same_axis = |(_, other): &&(BandSource, Band)| other.axis_variable == band.axis_variable;
-    let twice = chosen.bands.iter().find(same_axis).filter(|_| candidate.said.is_none());
-    if let Some((_, other)) = twice {
-        let what = format!("`{}` has the same channels", other.variable);
-        problems.push(Problem::note(
-            &what,
-            &variable.path,
-            "the first one was taken, this one left out",
-        ));
-        return Ok(());
-    }
-    match layout(index, variable, spectral, &chosen.dimensions) {
-        Some(layout) => {
-            if footprints.iter().any(|own| !chosen.dimensions.0.contains(own)) {
-                let what = "laid over the footprints by the names and lengths of its dimensions";
-                problems.push(Problem::guess(what, &variable.path, ""));
-            }
-            chosen.bands.push((
-                BandSource {
-                    variable: candidate.variable,
-                    layout,
-                    bad: band.bad.clone(),
-                    spectral,
-                    said: candidate.said.clone().unwrap_or_default(),
-                },
-                band,
-            ));
-        }
-        None if candidate.said.is_some() => {
-            let names: Vec<&str> = index.dimension_names(variable);
-            return Err(format!(
-                "band `{}` lies over {}, not over the footprints of the first band",
-                variable.path,
-                names.join(", ")
-            ));
-        }
-        None => {
-            let what = "its footprint dimensions are not those of the other bands";
-            problems.push(Problem::note(what, &variable.path, "left out"));
-        }
-    }
-    Ok(())
-}
-
-/// The footprint dimensions in the order that the layout file names them in.
-fn said_dimensions(
-    index: &FileIndex,
-    footprints: &[usize],
-    names: &[String],
-) -> Result<FootprintDimensions, String> {
-    let named = |name: &String| named_dimension(index, footprints, name);
-    let places = names.iter().map(named).collect::<Result<Vec<usize>, String>>();
-    let places = places.map_err(|error| format!("footprint_dimensions: {error}"))?;
-    match footprints.iter().all(|own| places.contains(own)) && places.len() == footprints.len() {
-        true => Ok(FootprintDimensions(places)),
-        false => {
-            let own: Vec<&str> =
-                footprints.iter().map(|&own| index.dimensions[own].name.as_str()).collect();
-            Err(format!("footprint_dimensions: must name each of {} once", own.join(", ")))
-        }
-    }
-}
-
-/// The roles of a band's dimensions, if they are the spectral one and all footprint dimensions.
-fn layout(
-    index: &FileIndex,
-    variable: &Variable,
-    spectral: usize,
-    dimensions: &FootprintDimensions,
-) -> Option<Layout> {
-    let role = |&dimension: &usize| match dimension == spectral {
-        true => Some(Role::Spectral),
-        false => dimensions.place_of(index, dimension).map(|(place, _)| Role::Footprint(place)),
-    };
-    let roles: Vec<Role> = variable.dimensions.iter().map(role).collect::<Option<_>>()?;
-    let all_there = (0..dimensions.0.len())
-        .map(Role::Footprint)
-        .chain([Role::Spectral])
-        .all(|role| roles.iter().filter(|&&own| own == role).count() == 1);
-    let fits = all_there && roles.len() == dimensions.0.len() + 1;
-    fits.then(|| Layout::new(roles, index.lengths(variable)))
-}
-
 fn grid(index: &FileIndex, dimensions: &FootprintDimensions) -> FootprintGrid {
     let dimension = |&place: &usize| &index.dimensions[place];
     FootprintGrid::new(
@@ -417,27 +164,5 @@ fn check_size(reader: &FileReader, grid: &FootprintGrid) -> Result<(), GranuleEr
                 grid.names().first().map_or("", String::as_str),
             ),
         )),
-    }
-}
-
-/// What was looked for, and what was found instead.
-fn nothing_found(index: &FileIndex, unusable: &[String]) -> String {
-    let looked_for = "holds no spectra that can be used; looked for a variable with two or more dimensions, one of \
-         them with a spectral axis (units cm-1, m-1, um, nm, …), whose units are those of a spectral radiance \
-         (for example mW m-2 sr-1 (cm-1)-1) or, for brightness temperatures, K";
-    if !unusable.is_empty() {
-        return format!("{looked_for}; found {}", unusable.join("; "));
-    }
-    let large = index.variables.iter().filter(|variable| variable.dimensions.len() >= 2).take(8);
-    let names: Vec<String> = large
-        .map(|variable| {
-            let units = variable.text("units").unwrap_or_default();
-            let dimensions = index.dimension_names(variable).join(", ");
-            format!("`{}` ({dimensions}) in {units:?}", variable.path)
-        })
-        .collect();
-    match names.is_empty() {
-        true => format!("{looked_for}; found no variable with two dimensions"),
-        false => format!("{looked_for}; found {}", names.join(", ")),
     }
 }
