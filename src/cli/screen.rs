@@ -13,9 +13,9 @@ use super::footprint_at::{footprint, indices};
 use super::inputs::{Inputs, Reading};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
-use crate::flags::{Author, Campaign};
+use crate::flags::{Author, Campaign, CampaignError};
 use crate::granule::Opening;
-use crate::review::{Record, Recorded, Review};
+use crate::review::{Record, Recorded, Review, rulebook_of};
 use crate::screening::{Evidence, Rulebook, Screened, Summary, TestEvidence, Verdict};
 use crate::system::{Cancel, clean_text};
 
@@ -35,7 +35,8 @@ pub struct Arguments {
     inputs: Inputs,
     #[command(flatten)]
     reading: Reading,
-    /// The rulebook; the built-in one where none is named.
+    /// The rulebook; where none is named, the campaign's own (rulebook.toml in its folder) or the
+    /// built-in one.
     #[arg(long, value_name = "FILE")]
     rules: Option<PathBuf>,
     /// The campaign folder with the ledgers; made if it is not there.
@@ -61,15 +62,15 @@ struct Desk {
 }
 
 /// What came of a file.
-struct Outcome<'r> {
-    screened: Screened<'r>,
+struct Outcome {
+    screened: Screened,
     recorded: Option<Recorded>,
 }
 
 /// Runs the command.
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let files = arguments.inputs.files()?;
-    let rulebook = rulebook_or_builtin(arguments.rules.as_deref())?;
+    let rulebook = rulebook(&arguments)?;
     let opening = arguments.reading.opening()?;
     if let Some(position) = &arguments.explain {
         let position = indices("--explain", position)?;
@@ -96,6 +97,18 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     Ok(Exit::of_many(files.len() - failed, failed))
 }
 
+/// The rulebook that was named, else the campaign's own, else the built-in one.
+fn rulebook(arguments: &Arguments) -> anyhow::Result<Rulebook> {
+    if arguments.rules.is_some() {
+        return rulebook_or_builtin(arguments.rules.as_deref());
+    }
+    match Campaign::open(&arguments.campaign) {
+        Ok(campaign) => Ok(rulebook_of(&campaign).map_err(|error| UsageError(error.to_string()))?),
+        Err(CampaignError::Missing(_)) => rulebook_or_builtin(None),
+        Err(error) => Err(error.into()),
+    }
+}
+
 fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {
     let now = surroundings::now()?;
     let campaign = Campaign::open_or_create(&arguments.campaign)?;
@@ -118,12 +131,12 @@ fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {
     Ok(Desk { campaign, author: surroundings::author(), now })
 }
 
-fn one_file<'r>(
+fn one_file(
     opening: &Opening,
     file: &Path,
-    rulebook: &'r Rulebook,
+    rulebook: &Rulebook,
     desk: Option<&Desk>,
-) -> anyhow::Result<Outcome<'r>> {
+) -> anyhow::Result<Outcome> {
     let review = Review::open(opening, file)?;
     review.read_for(rulebook, &Cancel::new())?;
     let screened = review.screen(rulebook);
@@ -134,7 +147,7 @@ fn one_file<'r>(
     Ok(Outcome { screened, recorded })
 }
 
-fn record(desk: &Desk, review: &Review, screened: &Screened<'_>) -> anyhow::Result<Recorded> {
+fn record(desk: &Desk, review: &Review, screened: &Screened) -> anyhow::Result<Recorded> {
     let version = concat!("radsieve ", env!("CARGO_PKG_VERSION"));
     let identity = review.identify()?;
     let mut record = Record::open(&desk.campaign, identity, &desk.author, version, desk.now)?;
@@ -147,7 +160,7 @@ fn record(desk: &Desk, review: &Review, screened: &Screened<'_>) -> anyhow::Resu
 }
 
 /// One line about each file on standard output; what went wrong on standard error.
-fn tell(file: &Path, outcome: &anyhow::Result<Outcome<'_>>, json: bool) -> std::io::Result<()> {
+fn tell(file: &Path, outcome: &anyhow::Result<Outcome>, json: bool) -> std::io::Result<()> {
     let file = clean_text(&file.display().to_string());
     match outcome {
         Ok(outcome) => {
@@ -197,7 +210,7 @@ fn head(rulebook: &Rulebook) -> Value {
     })
 }
 
-fn entry(file: &Path, outcome: &anyhow::Result<Outcome<'_>>) -> Value {
+fn entry(file: &Path, outcome: &anyhow::Result<Outcome>) -> Value {
     let file = file.display().to_string();
     let outcome = match outcome {
         Ok(outcome) => outcome,
@@ -223,7 +236,7 @@ fn entry(file: &Path, outcome: &anyhow::Result<Outcome<'_>>) -> Value {
 }
 
 /// How often each test spoke, and why it could not.
-fn tests(screened: &Screened<'_>) -> Vec<Value> {
+fn tests(screened: &Screened) -> Vec<Value> {
     let tests = screened.rulebook.tests.iter().zip(&screened.tests);
     tests
         .map(|(test, result)| {

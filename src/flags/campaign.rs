@@ -114,6 +114,32 @@ impl Campaign {
         &self.settings
     }
 
+    /// Where the campaign's own rulebook lies, if it has one.
+    pub fn rulebook_path(&self) -> PathBuf {
+        self.folder.join(RULEBOOK)
+    }
+
+    /// The text of the campaign's own rulebook; `None` where it has none.
+    ///
+    /// # Errors
+    /// It is there and cannot be read, or is far too long.
+    pub fn rulebook_text(&self) -> Result<Option<String>, CampaignError> {
+        let path = self.rulebook_path();
+        match std::fs::metadata(&path) {
+            Err(error) if error.kind() == io::ErrorKind::NotFound => return Ok(None),
+            Err(source) => return Err(CampaignError::Unreadable { path, source }),
+            Ok(data) if data.len() > LONGEST_RULEBOOK => {
+                let what = "the file is far too long for a rulebook".to_owned();
+                return Err(CampaignError::Settings { path, what });
+            }
+            Ok(_) => {}
+        }
+        match std::fs::read_to_string(&path) {
+            Ok(text) => Ok(Some(text)),
+            Err(source) => Err(CampaignError::Unreadable { path, source }),
+        }
+    }
+
     /// The stems (as [`file_name_part`] writes them) of all granules that had ledgers when their
     /// ledgers were begun. Costs one look at a folder: no granule and no ledger is opened.
     pub fn ledger_stems(&self) -> BTreeSet<String> {
@@ -160,6 +186,10 @@ impl Campaign {
 
 /// The folder of the ledgers in the campaign folder.
 const LEDGERS: &str = "ledgers";
+/// The campaign's own rulebook in the campaign folder.
+const RULEBOOK: &str = "rulebook.toml";
+/// A rulebook is words and tables; a larger file is a mistake.
+const LONGEST_RULEBOOK: u64 = 4 << 20;
 
 #[cfg(test)]
 mod tests {

@@ -7,6 +7,7 @@
 
 mod exporting;
 mod record;
+mod rulebook_of;
 mod tests_decide;
 #[allow(clippy::module_inception)] // The room is named after the thing.
 mod review;
@@ -17,6 +18,7 @@ mod verbs;
 pub use exporting::ExportedBy;
 pub use record::Record;
 pub use review::Review;
+pub use rulebook_of::{NoRulebook, rulebook_of};
 pub use spectrum::{BandSpectrum, Spectrum};
 pub use tests_decide::{Recorded, test_acts};
 pub use verbs::Refusal;

@@ -49,7 +49,7 @@ impl Review {
     }
 
     /// Runs the tests of a rulebook over what has been read so far.
-    pub fn screen<'r>(&self, rulebook: &'r Rulebook) -> Screened<'r> {
+    pub fn screen(&self, rulebook: &Rulebook) -> Screened {
         screen(rulebook, &self.names())
     }
 

@@ -20,7 +20,7 @@ pub struct Recorded {
 }
 
 /// What the tests decide about a granule, each with its reason.
-pub fn test_acts(screened: &Screened<'_>) -> Vec<(Act, Option<String>)> {
+pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     let all = || 0..screened.footprints();
     let mut acts = Vec::new();
     for flag in &screened.flags {
@@ -34,7 +34,7 @@ pub fn test_acts(screened: &Screened<'_>) -> Vec<(Act, Option<String>)> {
     let why = format!("doubt {} or more", screened.rulebook.doubt_cut);
     acts.push((flag_act("doubtful", doubtful), Some(why)));
     let assessed = all().filter(|at| screened.assessed[*at]).collect();
-    let rulebook = screened.rulebook;
+    let rulebook = &screened.rulebook;
     let why = format!("rulebook {} ({})", rulebook.name, rulebook.fingerprint);
     acts.push((Act::Assess { footprints: assessed }, Some(why)));
     acts.retain(|(act, _)| act.footprints().is_some_and(|footprints| !footprints.is_empty()));
@@ -53,7 +53,7 @@ impl Record {
     /// A flag that the campaign does not have.
     pub fn tests_decide(
         &mut self,
-        screened: &Screened<'_>,
+        screened: &Screened,
         now: Timestamp,
     ) -> Result<Recorded, Refusal> {
         self.knows(&screened.rulebook.flags())?;

@@ -96,11 +96,11 @@ fn present(value: f64) -> Option<f64> {
     (!value.is_nan()).then_some(value)
 }
 
-impl Screened<'_> {
+impl Screened {
     /// The evidence about a footprint; `None` where there is no such footprint.
     pub fn evidence(&self, footprint: usize) -> Option<Evidence> {
         let surface = *self.surfaces.get(footprint)?;
-        let councils = Councils::of(self.rulebook);
+        let councils = Councils::of(&self.rulebook);
         let tests = self.rulebook.tests.iter().zip(&self.tests);
         let flags = (0..self.flags.len()).map(|flag| self.flag(&councils, flag, footprint));
         Some(Evidence {

@@ -20,9 +20,9 @@ pub fn channels_of(rulebook: &Rulebook, names: &dyn Names) -> Vec<Channel> {
 
 /// What the tests say about a granule.
 #[derive(Debug, Clone)]
-pub struct Screened<'r> {
+pub struct Screened {
     /// The rulebook.
-    pub rulebook: &'r Rulebook,
+    pub rulebook: Rulebook,
     /// The surface of each footprint, by place in the rulebook; `None` where none holds.
     pub surfaces: Vec<Option<usize>>,
     /// What each test gave, in the order of the rulebook.
@@ -68,7 +68,7 @@ pub struct Summary {
 }
 
 /// Runs all tests over all footprints. Each number is the same with any number of threads.
-pub fn screen<'r>(rulebook: &'r Rulebook, names: &dyn Names) -> Screened<'r> {
+pub fn screen(rulebook: &Rulebook, names: &dyn Names) -> Screened {
     let (surfaces, tests) = run(rulebook, names);
     let councils = Councils::of(rulebook);
     let flags: Vec<FlagResult> = rulebook
@@ -84,7 +84,7 @@ pub fn screen<'r>(rulebook: &'r Rulebook, names: &dyn Names) -> Screened<'r> {
     let footprints = 0..surfaces.len();
     let assessed = footprints.clone().map(|at| is_assessed(rulebook, &flags, at)).collect();
     let doubt = footprints.map(|at| doubt(&flags, at)).collect();
-    Screened { rulebook, surfaces, tests, flags, assessed, doubt }
+    Screened { rulebook: rulebook.clone(), surfaces, tests, flags, assessed, doubt }
 }
 
 /// A family that speaks about a flag on a surface.
@@ -175,7 +175,7 @@ fn doubt(flags: &[FlagResult], at: usize) -> f64 {
     set.or_else(|| tested.reduce(f64::max)).unwrap_or(1.0)
 }
 
-impl Screened<'_> {
+impl Screened {
     /// Number of footprints.
     pub fn footprints(&self) -> usize {
         self.surfaces.len()

@@ -61,12 +61,12 @@ fn scenes() -> FakeNames {
     at_sea(|wavenumber, scene| planck(wavenumber, temperature(scene, wavenumber)), SCENES.len())
 }
 
-fn flags(screened: &Screened<'_>, footprint: usize) -> Vec<String> {
+fn flags(screened: &Screened, footprint: usize) -> Vec<String> {
     let set = screened.flags.iter().filter(|flag| flag.is_set(footprint));
     set.map(|flag| flag.flag.clone()).collect()
 }
 
-fn verdict(screened: &Screened<'_>, test: &str, footprint: usize) -> (Verdict, f64) {
+fn verdict(screened: &Screened, test: &str, footprint: usize) -> (Verdict, f64) {
     let at = screened.rulebook.tests.iter().position(|one| one.name == test);
     let result = &screened.tests[at.unwrap_or_else(|| panic!("no test {test}"))];
     (result.verdicts[footprint], result.margins[footprint])
