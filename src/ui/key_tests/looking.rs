@@ -1,0 +1,99 @@
+//! Layers, channels, spectra, pins.
+
+use super::one_granule;
+use crate::ui::event::Event;
+use crate::ui::jobs::Job;
+use crate::ui::trial::{POSITIONS, Place};
+
+#[test]
+fn layers_by_key_by_command_and_by_channel() {
+    let (_place, mut trial) = one_granule();
+    let first = trial.bench().layer.text.clone();
+    assert_eq!(first, "bt(900)");
+    assert!((trial.bench().layer.values[4] - 254.0).abs() < 1e-6, "exact but for rounding");
+    trial.keys("]");
+    assert_ne!(trial.bench().layer.text, first);
+    trial.keys("[");
+    assert_eq!(trial.bench().layer.text, first);
+    trial.types(":layer lat").keys("Enter");
+    assert_eq!(trial.bench().layer.values[POSITIONS], 9.0);
+    trial.types(":go 1231").keys("Enter c");
+    assert_eq!(trial.bench().layer.text, "bt(1231)");
+    trial.types(":layer bt(3000)").keys("Enter");
+    assert!(trial.message().contains("no channel near 3000"), "{}", trial.message());
+    trial.types(":layer bt(").keys("Enter");
+    assert!(!trial.message().is_empty());
+    assert_eq!(trial.bench().layer.text, "bt(1231)", "what was on show stays");
+}
+
+#[test]
+fn a_command_that_makes_no_sense_stays_to_be_mended() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":flga cloudy").keys("Enter");
+    assert!(trial.screen(80, 24).contains("no command flga"));
+    trial.keys("Ctrl-U").types("flag nothing").keys("Enter");
+    assert!(trial.message().starts_with("no flag nothing; there are cloudy"));
+    trial.types(":").keys("Up Enter");
+    assert!(trial.message().starts_with("no flag nothing"), "the history brings it back");
+}
+
+#[test]
+fn the_channel_in_hand_moves_across_bands_and_the_window_follows() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":go 901").keys("Enter .");
+    assert_eq!(trial.bench().channel_wavenumber(), Some(1230.0));
+    trial.keys("+ + + + + + + + ,");
+    let (low, high) = trial.bench().window.shown();
+    assert!(low <= 901.0 && 901.0 <= high);
+    trial.keys("> >");
+    assert_eq!(trial.bench().channel_wavenumber(), Some(1231.0));
+    trial.keys("0 b");
+    assert!(trial.bench().window.is_whole() && trial.bench().radiance);
+}
+
+#[test]
+fn pins_stay_with_their_footprint() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("x Right x Right");
+    let pins: Vec<_> = trial.bench().pins.iter().map(|pin| (pin.letter, pin.footprint)).collect();
+    assert_eq!(pins, [('a', 0), ('b', 1)]);
+    assert!(trial.bench().pins.iter().all(|pin| pin.spectrum.is_some()));
+    trial.keys("Left x");
+    assert_eq!(trial.bench().pins.len(), 1, "the second time takes the pin off");
+    trial.keys("X");
+    assert!(trial.bench().pins.is_empty());
+}
+
+#[test]
+fn a_spectrum_is_there_before_all_others_are_read() {
+    let place = Place::with(&["lowen_001.nc"]);
+    let mut trial = place.review_held(&["lowen_001.nc"]);
+    // What the ledgers say, then opening; of what follows only the spectrum is done.
+    while trial.app.bench().is_none() {
+        for answer in trial.answers_of_next() {
+            trial.event(Event::Answer(answer));
+        }
+    }
+    trial.jobs.retain(|job| matches!(job, Job::Spectrum { .. }));
+    trial.press("Right");
+    assert_eq!(trial.jobs.len(), 2, "the cursor moved before the first spectrum was there");
+    let stale = trial.answers_of_next();
+    for answer in stale {
+        trial.event(Event::Answer(answer));
+    }
+    assert!(trial.bench().spectrum.is_none(), "the spectrum of where the cursor was is dropped");
+    for answer in trial.answers_of_next() {
+        trial.event(Event::Answer(answer));
+    }
+    assert_eq!(trial.bench().spectrum.as_ref().unwrap().footprint, 1);
+    assert!(!trial.bench().filling.done);
+}
+
+#[test]
+fn a_channel_that_is_not_where_it_was_asked_for_is_told() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":go 901").keys("Enter");
+    assert_eq!(trial.message(), "channel at 901.00 cm-1");
+    trial.types(":go 2500").keys("Enter");
+    assert!(trial.message().starts_with("no channel at 2500.00 cm-1"), "{}", trial.message());
+}
