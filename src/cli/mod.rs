@@ -20,6 +20,7 @@ mod review;
 mod rules;
 mod screen;
 mod spectrum;
+mod spectrum_energy;
 mod surroundings;
 mod synth;
 mod table;

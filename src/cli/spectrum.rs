@@ -9,13 +9,16 @@ use serde_json::{Map, Value};
 use super::Exit;
 use super::footprint_at::{footprint, indices};
 use super::inputs::Reading;
+use super::spectrum_energy::{EnergyView, stretches};
 use super::table::{cell, present, stream_error};
-use crate::granule::{Band, Granule};
+use crate::granule::Granule;
 use crate::review::{Review, Spectrum};
+use crate::spectral::{absorption, window_temperature};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
-#[command(after_help = "Example:\n  radsieve spectrum granule.nc --at 12,34,5")]
+#[command(after_help = "Examples:\n  radsieve spectrum granule.nc --at 12,34,5\n  \
+    radsieve spectrum granule.nc --at 12,34,5 --energy")]
 pub struct Arguments {
     /// The granule.
     #[arg(value_name = "FILE")]
@@ -23,6 +26,10 @@ pub struct Arguments {
     /// The footprint: its zero-based index along each footprint dimension, as in 12,34 or 12,34,5.
     #[arg(long, value_name = "INDICES", allow_hyphen_values = true)]
     at: String,
+    /// What the spectrum carries in each absorption band and window, W m-2 sr-1, against a black
+    /// body of its window temperature.
+    #[arg(long)]
+    energy: bool,
     /// One JSON object in place of CSV.
     #[arg(long)]
     json: bool,
@@ -38,26 +45,35 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let review = Review::of(granule);
     let spectrum = review.read_spectrum(footprint)?;
     let mut out = BufWriter::new(io::stdout().lock());
-    if arguments.json {
+    if arguments.energy {
+        let view = EnergyView::of(review.granule(), &spectrum);
+        match arguments.json {
+            true => view.write_json(&arguments.file, &mut out)?,
+            false => view.write_csv(&mut out)?,
+        }
+    } else if arguments.json {
         let answer = answer(&arguments, review.granule(), &position, &spectrum);
         serde_json::to_writer(&mut out, &answer).map_err(io::Error::from)?;
         out.write_all(b"\n")?;
     } else {
-        write_csv(review.granule().bands(), &spectrum, &mut out)?;
+        write_csv(review.granule(), &spectrum, &mut out)?;
     }
     out.flush()?;
     Ok(Exit::Done)
 }
 
 /// Channels in the file's order, band after band.
-fn write_csv(bands: &[Band], spectrum: &Spectrum, out: &mut dyn Write) -> io::Result<()> {
+fn write_csv(granule: &Granule, spectrum: &Spectrum, out: &mut dyn Write) -> io::Result<()> {
+    let window = window_temperature(&stretches(granule, spectrum)).unwrap_or(f64::NAN);
+    let bands = granule.bands();
     let mut writer = csv::Writer::from_writer(out);
-    let head = ["band", "wavenumber_cm-1", "radiance_mW_m-2_sr-1_(cm-1)-1", "bt_K"];
+    let head = ["band", "wavenumber_cm-1", "radiance_mW_m-2_sr-1_(cm-1)-1", "bt_K", "absorption"];
     writer.write_record(head).map_err(stream_error)?;
     for (band, values) in bands.iter().zip(&spectrum.bands) {
         let values = values.radiances.iter().zip(&values.temperatures);
         for (wavenumber, (radiance, temperature)) in band.axis.wavenumbers().iter().zip(values) {
-            let numbers = [*wavenumber, *radiance, *temperature].map(cell);
+            let absorbed = absorption(*wavenumber, *radiance, window);
+            let numbers = [*wavenumber, *radiance, *temperature, absorbed].map(cell);
             let row = std::iter::once(&band.name).chain(&numbers);
             writer.write_record(row).map_err(stream_error)?;
         }
@@ -72,6 +88,8 @@ struct Answer {
     position: Map<String, Value>,
     lat: Option<f64>,
     lon: Option<f64>,
+    #[serde(rename = "window_bt_K")]
+    window_temperature: Option<f64>,
     bands: Vec<BandAnswer>,
 }
 
@@ -84,6 +102,7 @@ struct BandAnswer {
     radiances: Vec<Option<f64>>,
     #[serde(rename = "bt_K")]
     temperatures: Vec<Option<f64>>,
+    absorption: Vec<Option<f64>>,
 }
 
 fn answer(
@@ -98,11 +117,14 @@ fn answer(
     };
     let names = granule.footprints().names().iter().cloned();
     let all = |values: &[f64]| values.iter().map(|value| present(*value)).collect();
+    let window = window_temperature(&stretches(granule, spectrum));
+    let absorbed = |(nu, radiance): (&f64, &f64)| present(absorption(*nu, *radiance, window?));
     Answer {
         file: arguments.file.to_string_lossy().into_owned(),
         position: names.zip(position.iter().map(|index| Value::from(*index))).collect(),
         lat: field(&place.latitude),
         lon: field(&place.longitude),
+        window_temperature: window,
         bands: granule
             .bands()
             .iter()
@@ -112,6 +134,10 @@ fn answer(
                 wavenumbers: band.axis.wavenumbers().to_vec(),
                 radiances: all(&values.radiances),
                 temperatures: all(&values.temperatures),
+                absorption: {
+                    let channels = band.axis.wavenumbers().iter().zip(&values.radiances);
+                    channels.map(absorbed).collect()
+                },
             })
             .collect(),
     }

@@ -10,6 +10,7 @@ mod apodisation;
 mod band_correction;
 mod band_integral;
 mod channel_axis;
+mod energy;
 pub mod fast;
 mod noise;
 mod planck;
@@ -23,6 +24,9 @@ pub use apodisation::{HAMMING_CENTRE, HAMMING_NOISE_FACTOR, HAMMING_SIDE, Hammin
 pub use band_correction::BandCorrection;
 pub use band_integral::{band_integral, blackbody_fraction, total_radiance};
 pub use channel_axis::{AxisError, ChannelAxis, Nearest};
+pub use energy::{
+    ENERGY_BANDS, Energy, EnergyBand, Stretch, absorption, energy_view, window_temperature,
+};
 pub use noise::{nedt, nedt_at};
 pub use planck::{
     NoTemperature, brightness_temperature, brightness_temperature_or_nan, planck, planck_slope,

@@ -46,10 +46,10 @@ fn channels_come_in_the_files_order_with_radiance_and_temperature() {
         let output = spectrum(file, "1,2,3").assert().success().get_output().clone();
         let stdout = text(&output.stdout);
         let lines: Vec<&str> = stdout.lines().collect();
-        assert_eq!(lines[0], "band,wavenumber_cm-1,radiance_mW_m-2_sr-1_(cm-1)-1,bt_K");
+        assert_eq!(lines[0], "band,wavenumber_cm-1,radiance_mW_m-2_sr-1_(cm-1)-1,bt_K,absorption");
         assert_eq!(lines.len(), 1 + 111 + 301);
-        assert_eq!(lines[4], "longwave,803,,");
-        assert_eq!(lines[5], "longwave,804,-0.25,");
+        assert_eq!(lines[4], "longwave,803,,,");
+        assert!(lines[5].starts_with("longwave,804,-0.25,,1.00"), "{}", lines[5]);
         let cells: Vec<&str> = lines[1].split(',').collect();
         assert_eq!(cells[..2], ["longwave", "800"]);
         assert_eq!(cells[2].parse::<f64>().unwrap(), planck(800.0, temperature(66)));
@@ -77,6 +77,30 @@ fn json_is_one_object_with_nulls() {
         assert_eq!(band["radiance_mW_m-2_sr-1_(cm-1)-1"][3], Value::Null);
         assert_eq!(band["radiance_mW_m-2_sr-1_(cm-1)-1"][4], -0.25);
         assert_eq!(band["bt_K"][4], Value::Null);
+    });
+}
+
+#[test]
+fn the_energy_of_a_black_body_is_that_of_its_window() {
+    with_granule(&PlainGranule::new(), |file| {
+        let output = spectrum(file, "1,2,3")
+            .args(["--energy", "--json"])
+            .assert()
+            .success()
+            .get_output()
+            .clone();
+        let answer: Value = serde_json::from_slice(&output.stdout).unwrap();
+        let number = |value: &Value| value.as_f64().unwrap();
+        // The window is 10 cm-1 wide and the Planck function curved: about a millikelvin.
+        assert!((number(&answer["window_bt_K"]) - temperature(66)).abs() < 2e-3);
+        let intervals = answer["intervals"].as_array().unwrap();
+        assert_eq!(intervals[0]["band"], "window 11 um");
+        for interval in intervals {
+            let taken = number(&interval["taken_W_m-2_sr-1"]);
+            assert!(taken.abs() < 2e-4 * number(&interval["radiance_W_m-2_sr-1"]), "{interval}");
+        }
+        let csv = spectrum(file, "1,2,3").arg("--energy").assert().success().get_output().clone();
+        assert_eq!(text(&csv.stdout).lines().count(), 1 + intervals.len());
     });
 }
 
