@@ -14,7 +14,7 @@ use super::colour::Tone;
 use super::deciding;
 use super::jobs::{Answer, Job};
 use super::looking;
-use super::panes::Pane;
+use super::panes::Arrangement;
 use super::place::Place;
 use super::shown_layer::ShownLayer;
 use super::turning;
@@ -174,14 +174,16 @@ fn reread(app: &mut App, request: u64, found: LedgerReading) -> Vec<Job> {
 /// Goes back to where one was, unless keys have gone somewhere else by now.
 fn go_to_place(app: &mut App, place: &Place) -> Vec<Job> {
     let asked_for = app.outside.first_layer.is_some();
-    let pane = Pane::ALL.into_iter().find(|pane| Some(pane.name()) == place.pane.as_deref());
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     if bench.touched {
         return Vec::new();
     }
     bench.go_to(place);
     let layer = place.layer.clone().filter(|layer| !asked_for && *layer != bench.wanted);
-    app.focus = pane.unwrap_or(app.focus);
+    // Whoever has stood the panes otherwise by now keeps them so.
+    if app.panes == Arrangement::default() {
+        app.panes.restore(&place.panes, place.zoomed);
+    }
     looking::fill_pins(app);
     let mut jobs = looking::spectrum(app);
     if let Some(layer) = layer {

@@ -16,7 +16,7 @@ use super::colour::{Theme, Tone};
 use super::event::Ending;
 use super::line::History;
 use super::overlay::Overlay;
-use super::panes::{Pane, ScreenLayout};
+use super::panes::{Arrangement, Pane, ScreenLayout};
 
 /// What the review is given from outside; the same for its whole life.
 #[derive(Clone)]
@@ -79,10 +79,8 @@ pub struct App {
     pub searching: bool,
     /// Records of granules left while their last decisions were still on the way to the disk.
     pub left: Vec<Record>,
-    /// The pane that takes the keys.
-    pub focus: Pane,
-    /// The pane that has the screen for itself.
-    pub zoomed: Option<Pane>,
+    /// How the panes stand.
+    pub panes: Arrangement,
     /// What lies over the panes.
     pub overlay: Overlay,
     /// Lines of the Evidence that are scrolled away.
@@ -125,8 +123,7 @@ impl App {
             table: Table::Empty,
             searching: false,
             left: Vec::new(),
-            focus: Pane::Field,
-            zoomed: None,
+            panes: Arrangement::default(),
             overlay: Overlay::None,
             evidence_scroll: 0,
             message: (String::new(), Tone::Plain),
@@ -211,9 +208,19 @@ impl App {
         records
     }
 
+    /// The pane that takes the keys.
+    pub fn focus(&self) -> Pane {
+        self.panes.focus()
+    }
+
+    /// Where a pane lies, if it is on show.
+    pub fn area_of(&self, pane: Pane) -> Option<Rect> {
+        self.layout.as_ref()?.area(pane)
+    }
+
     /// Lays the panes out on a screen of this size.
     pub fn lay_out(&mut self, size: Size) {
-        self.layout = ScreenLayout::of(Rect::new(0, 0, size.width, size.height), self.zoomed);
+        self.layout = ScreenLayout::of(Rect::new(0, 0, size.width, size.height), &self.panes);
     }
 
     /// Decisions that are not known to be on the disk, in all granules.

@@ -10,6 +10,7 @@ use crate::review::{Review, Spectrum};
 pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState};
 use super::channels::Channels;
 use super::overlay::Selection;
+use super::panes::Arrangement;
 use super::panes::field::Placement;
 use super::place::Place;
 use super::shown_layer::ShownLayer;
@@ -66,6 +67,8 @@ pub struct Bench {
     pub radiance: bool,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
+    /// The dimension that the Strip lies along, by its number among those of the footprints.
+    pub strip_along: usize,
     /// How far the reading of the spectra has come.
     pub filling: Filling,
     /// The requests whose answers are waited for.
@@ -118,6 +121,7 @@ impl Bench {
             window: SpectrumWindow::whole(low, high),
             radiance: false,
             field_zoom: 0,
+            strip_along: 0,
             filling: Filling::default(),
             awaited: Awaited::default(),
             export_waits: None,
@@ -198,7 +202,7 @@ impl Bench {
     }
 
     /// Where one is, to be kept.
-    pub fn place(&self, pane: &str) -> Place {
+    pub fn place(&self, panes: &Arrangement) -> Place {
         Place {
             cursor: self.cursor,
             layer: Some(self.wanted.clone()),
@@ -206,7 +210,9 @@ impl Bench {
             window: (!self.window.is_whole()).then(|| self.window.shown()),
             radiance: self.radiance,
             field_zoom: self.field_zoom,
-            pane: Some(pane.to_owned()),
+            strip_along: self.strip_along,
+            panes: panes.names(),
+            zoomed: panes.is_zoomed(),
             pins: self.pins.iter().map(|pin| pin.footprint).collect(),
         }
     }
@@ -222,6 +228,8 @@ impl Bench {
         }
         self.radiance = place.radiance;
         self.field_zoom = place.field_zoom.min(super::looking::MOST_FIELD_ZOOM);
+        let dimensions = self.review.granule().footprints().lengths().len();
+        self.strip_along = place.strip_along.min(dimensions.saturating_sub(1));
         let footprints = self.footprints();
         for footprint in place.pins.iter().filter(|one| **one < footprints) {
             self.pin(*footprint);

@@ -2,56 +2,26 @@
 
 use ratatui::Frame;
 use ratatui::buffer::Buffer;
-use ratatui::layout::Rect;
 
 use super::app::App;
 use super::overlay::Overlay;
-use super::panes::evidence::EvidenceView;
 use super::panes::status::{Hint, StatusView};
-use super::panes::{self, Pane, ScreenLayout};
-use super::views::{self, FieldParts, TraceParts};
+use super::panes::{self, ScreenLayout};
+use super::views;
 
 /// Draws the whole screen.
 pub fn draw(app: &App, frame: &mut Frame<'_>) {
     let screen = frame.area();
-    let Some(layout) = ScreenLayout::of(screen, app.zoomed) else {
+    let Some(layout) = ScreenLayout::of(screen, &app.panes) else {
         panes::draw_too_small(screen, frame.buffer_mut());
         return;
     };
     let buffer = frame.buffer_mut();
-    draw_panes(app, &layout, buffer);
+    for (pane, area) in layout.panes() {
+        views::draw_pane(app, pane, area, buffer);
+    }
     draw_lines(app, &layout, buffer);
     views::draw_overlay(app, screen, layout.command, buffer);
-}
-
-fn draw_panes(app: &App, layout: &ScreenLayout, buffer: &mut Buffer) {
-    let theme = &app.theme;
-    if let Some(area) = layout.tray {
-        views::draw_tray(app, area, buffer);
-    }
-    if let Some(area) = layout.field {
-        let parts = FieldParts::of(app);
-        panes::field::draw(&parts.view(app), theme, area, buffer);
-    }
-    if let Some(area) = layout.evidence {
-        draw_evidence(app, area, buffer);
-    }
-    if let Some(area) = layout.trace {
-        let parts = TraceParts::of(app);
-        parts.with_view(app, |view| panes::trace::draw(view, theme, area, buffer));
-    }
-}
-
-fn draw_evidence(app: &App, area: Rect, buffer: &mut Buffer) {
-    let rows = views::evidence_rows(app);
-    let title = app.bench().map(|bench| bench.position_words(bench.cursor)).unwrap_or_default();
-    let view = EvidenceView {
-        title: &title,
-        rows: &rows,
-        scroll: app.evidence_scroll,
-        focused: app.focus == Pane::Evidence,
-    };
-    panes::evidence::draw(&view, &app.theme, area, buffer);
 }
 
 /// The status line, and the hints where no line is being typed.

@@ -1,6 +1,7 @@
 //! The keys, in one table: it feeds dispatch, the help screen and `docs/keys.md`.
 
 use super::key::{Code, Key};
+use super::panes::Pane;
 
 /// What a key or a command does without further words.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
@@ -27,6 +28,7 @@ pub enum Action {
     CycleRange,
     FieldIn,
     FieldOut,
+    StripAlong,
     ChannelUp,
     ChannelDown,
     ChannelFarUp,
@@ -56,6 +58,7 @@ pub enum Action {
     Problems,
     NextPane,
     PreviousPane,
+    Pane(Pane),
     Maximise,
     Command,
     Help,
@@ -156,6 +159,13 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('%')], Action::CycleRange, "cycle-range", Layers, "colour range by percentiles"),
     row(&[letter('i')], Action::FieldIn, "field-in", Layers, "zoom the map in"),
     row(&[letter('o')], Action::FieldOut, "field-out", Layers, "zoom the map out"),
+    row(
+        &[letter('s')],
+        Action::StripAlong,
+        "strip-along",
+        Layers,
+        "Strip: along lines, positions…",
+    ),
     row(&[letter('.')], Action::ChannelUp, "channel-up", Spectrum, "next channel in hand"),
     row(&[letter(',')], Action::ChannelDown, "channel-down", Spectrum, "previous channel"),
     row(&[letter('>')], Action::ChannelFarUp, "channel-far-up", Spectrum, "20 channels up"),
@@ -188,8 +198,13 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('A')], Action::SetAside, "ask-aside", Deciding, "set the granule aside"),
     row(&[letter('O')], Action::Reopen, "reopen", Deciding, "take the granule up again"),
     row(&[letter('E')], Action::Export, "export", Deciding, "export the flag mask"),
-    row(&[key(Code::Tab)], Action::NextPane, "next-pane", Program, "next pane"),
-    row(&[key(Code::BackTab)], Action::PreviousPane, "previous-pane", Program, "previous pane"),
+    row(&[key(Code::Tab)], Action::NextPane, "next-pane", Program, "next pane on show"),
+    row(&[key(Code::BackTab)], Action::PreviousPane, "previous-pane", Program, "the pane before"),
+    row(&[letter('1')], Action::Pane(Pane::Tray), "tray", Program, "to the Tray"),
+    row(&[letter('2')], Action::Pane(Pane::Field), "field", Program, "to the Field"),
+    row(&[letter('3')], Action::Pane(Pane::Trace), "trace", Program, "to the Trace"),
+    row(&[letter('5')], Action::Pane(Pane::Strip), "strip", Program, "to the Strip"),
+    row(&[letter('6')], Action::Pane(Pane::Evidence), "evidence", Program, "to the Evidence"),
     row(&[letter('z')], Action::Maximise, "maximise", Program, "one pane on the whole screen"),
     row(&[letter(':')], Action::Command, "command", Program, "command line, Tab completes"),
     row(&[letter('!')], Action::Problems, "problems", Program, "problems found in the file"),

@@ -13,10 +13,10 @@ const PAGE: usize = 10;
 
 /// One step of the cursor.
 pub fn step(app: &mut App, action: Action) -> Vec<Job> {
-    if app.focus == Pane::Tray && in_tray(app, action) {
+    if app.focus() == Pane::Tray && in_tray(app, action) {
         return Vec::new();
     }
-    if app.focus == Pane::Evidence && in_evidence(app, action) {
+    if app.focus() == Pane::Evidence && in_evidence(app, action) {
         return Vec::new();
     }
     let page = page(app);
@@ -76,7 +76,7 @@ fn in_evidence(app: &mut App, action: Action) -> bool {
 
 /// The rows of the map that the Field shows at once, less one to keep one's bearings.
 fn page(app: &App) -> isize {
-    let area = app.layout.and_then(|layout| layout.field);
+    let area = app.area_of(Pane::Field);
     let rows = match (area, app.bench()) {
         (Some(area), Some(bench)) => {
             let height = usize::from(area.height).saturating_sub(2) * 2;
@@ -91,15 +91,17 @@ fn page(app: &App) -> isize {
 
 /// A click puts the cursor there and gives the pane the keys; the wheel zooms the spectrum.
 pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
-    let Some(layout) = app.layout else { return Vec::new() };
-    let Some(pane) = layout.pane_at(mouse.column, mouse.row) else { return Vec::new() };
+    let layout = app.layout.as_ref();
+    let Some(pane) = layout.and_then(|layout| layout.pane_at(mouse.column, mouse.row)) else {
+        return Vec::new();
+    };
     match (mouse.button, pane) {
         (Button::WheelUp, Pane::Trace) => looking::trace(app, Action::ZoomIn),
         (Button::WheelDown, Pane::Trace) => looking::trace(app, Action::ZoomOut),
         (Button::WheelUp, Pane::Field) => looking::field(app, Action::FieldIn),
         (Button::WheelDown, Pane::Field) => looking::field(app, Action::FieldOut),
         (Button::Press | Button::Drag, Pane::Field) => {
-            app.focus = Pane::Field;
+            app.panes.focus_on(Pane::Field);
             let Some(footprint) = views::footprint_under(app, mouse.column, mouse.row) else {
                 return Vec::new();
             };
@@ -112,14 +114,19 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
         }
         (Button::Press, Pane::Tray) => click_in_tray(app, mouse),
         (Button::Press | Button::Drag, Pane::Trace) => {
-            app.focus = Pane::Trace;
+            app.panes.focus_on(Pane::Trace);
             match views::wavenumber_under(app, mouse.column, mouse.row) {
                 Some(wavenumber) => looking::go_to_channel(app, wavenumber),
                 None => Vec::new(),
             }
         }
+        (Button::Press | Button::Drag, Pane::Strip) => {
+            app.panes.focus_on(Pane::Strip);
+            let footprint = views::strip_footprint_under(app, mouse.column, mouse.row);
+            footprint.map_or_else(Vec::new, |footprint| go(app, footprint))
+        }
         (Button::Press, pane) => {
-            app.focus = pane;
+            app.panes.focus_on(pane);
             Vec::new()
         }
         _ => Vec::new(),
@@ -129,8 +136,8 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
 /// The first click on a granule chooses it, the second opens it.
 fn click_in_tray(app: &mut App, mouse: Mouse) -> Vec<Job> {
     let Some(row) = views::tray_row_under(app, mouse.column, mouse.row) else { return Vec::new() };
-    let chosen = app.focus == Pane::Tray && app.tray_cursor == row;
-    app.focus = Pane::Tray;
+    let chosen = app.focus() == Pane::Tray && app.tray_cursor == row;
+    app.panes.focus_on(Pane::Tray);
     app.tray_cursor = row;
     if chosen { super::turning::turn(app, Action::Open) } else { Vec::new() }
 }

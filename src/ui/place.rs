@@ -20,8 +20,12 @@ pub struct Place {
     pub radiance: bool,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
-    /// The pane in focus, by its name.
-    pub pane: Option<String>,
+    /// The dimension that the Strip lies along, by its number.
+    pub strip_along: usize,
+    /// The panes that had the keys, the latest first, by their names.
+    pub panes: Vec<String>,
+    /// The pane with the keys has the screen for itself.
+    pub zoomed: bool,
     /// The pinned footprints.
     pub pins: Vec<usize>,
 }

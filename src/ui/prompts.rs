@@ -62,7 +62,7 @@ fn scrolled(
     lines: usize,
     overlay: impl FnOnce(usize) -> Overlay,
 ) -> Vec<Job> {
-    let page = app.layout.map_or(10, |layout| usize::from(layout.status.y).max(2) - 1);
+    let page = app.layout.as_ref().map_or(10, |layout| usize::from(layout.status.y).max(2) - 1);
     let scroll = match key.code {
         Code::Down | Code::Char('j') => scroll + 1,
         Code::Up | Code::Char('k') => scroll.saturating_sub(1),

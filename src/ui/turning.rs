@@ -48,7 +48,7 @@ pub fn open_first(app: &mut App) -> Vec<Job> {
 fn none_is_left(app: &mut App) -> Vec<Job> {
     let why = problems_key();
     app.message = (format!("none of the files can be used; {why} says why"), Tone::Bad);
-    app.focus = Pane::Tray;
+    app.panes.focus_on(Pane::Tray);
     Vec::new()
 }
 
@@ -74,7 +74,7 @@ pub fn turn(app: &mut App, action: Action) -> Vec<Job> {
             (here.and_then(|here| app.tray.previous(here)), Direction::Backward)
         }
         Action::NextUnsigned => (app.tray.next_unsigned(here), Direction::ForwardUnsigned),
-        _ if app.focus != Pane::Tray => return Vec::new(),
+        _ if app.focus() != Pane::Tray => return Vec::new(),
         _ => (Some(app.tray_cursor), Direction::Forward),
     };
     match found {
@@ -112,7 +112,7 @@ pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
 /// Waits no longer for a granule to be opened; its answer will be dropped.
 pub fn give_up_opening(app: &mut App) {
     app.table = Table::Empty;
-    app.focus = Pane::Tray;
+    app.panes.focus_on(Pane::Tray);
     app.say("opening given up; Enter opens what is chosen in the Tray");
 }
 
@@ -167,7 +167,7 @@ fn put_away(app: &mut App) {
 pub fn keep_place(app: &App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return Vec::new() };
     let Some(record) = bench.record.open() else { return Vec::new() };
-    let (identity, place) = (record.identity().clone(), bench.place(app.focus.name()));
+    let (identity, place) = (record.identity().clone(), bench.place(&app.panes));
     vec![Job::Keep { identity, place }]
 }
 

@@ -62,6 +62,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::NextGranule | A::PreviousGranule | A::NextUnsigned | A::Open => {
             turning::turn(app, action)
         }
+        A::StripAlong => looking::strip_along(app),
         A::NextLayer | A::PreviousLayer | A::ChannelLayer | A::CycleRange => {
             looking::layer(app, action)
         }
@@ -82,9 +83,14 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
             prompts::open(app, action)
         }
         A::Help | A::Problems => prompts::open(app, action),
-        A::NextPane | A::PreviousPane => focus(app, action == A::NextPane),
+        A::NextPane | A::PreviousPane => {
+            let pane = next_pane(app, action == A::NextPane);
+            focus(app, pane)
+        }
+        A::Pane(pane) => focus(app, pane),
         A::Maximise => {
-            app.zoomed = app.zoomed.is_none().then_some(app.focus);
+            let zoomed = app.panes.is_zoomed();
+            app.panes.zoom(!zoomed);
             Vec::new()
         }
         A::Mouse => {
@@ -113,15 +119,21 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
     }
 }
 
-fn focus(app: &mut App, forward: bool) -> Vec<Job> {
-    app.focus = app.focus.step(forward);
-    if app.zoomed.is_some() {
-        app.zoomed = Some(app.focus);
-    }
-    if app.focus == Pane::Tray {
+fn focus(app: &mut App, pane: Pane) -> Vec<Job> {
+    app.panes.focus_on(pane);
+    if pane == Pane::Tray {
         app.tray_cursor = app.current_entry().unwrap_or(0);
     }
     Vec::new()
+}
+
+/// The next pane on show, or the one before; of all panes where one has the screen for itself.
+fn next_pane(app: &App, forward: bool) -> Pane {
+    let mut pane = app.focus().step(forward);
+    while !app.panes.is_zoomed() && pane != app.focus() && app.area_of(pane).is_none() {
+        pane = pane.step(forward);
+    }
+    pane
 }
 
 /// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, then the message.
@@ -132,7 +144,9 @@ fn cancel(app: &mut App) -> Vec<Job> {
         app.say("stays");
     } else if matches!(app.table, Table::Opening { .. }) {
         turning::give_up_opening(app);
-    } else if !dropped && app.zoomed.take().is_none() {
+    } else if !dropped && app.panes.is_zoomed() {
+        app.panes.zoom(false);
+    } else if !dropped {
         app.say("");
     }
     Vec::new()

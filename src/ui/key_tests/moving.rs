@@ -29,7 +29,7 @@ fn arrows_and_letters_move_the_cursor_and_stop_at_the_edges() {
 #[test]
 fn the_mouse_moves_the_cursor_only_where_it_is_wanted() {
     let (_place, mut trial) = one_granule();
-    let area = trial.app.layout.unwrap().field.unwrap();
+    let area = trial.app.area_of(Pane::Field).unwrap();
     let cells = area.positions().map(|cell| (cell.x, cell.y));
     let under = |(column, row)| views::footprint_under(&trial.app, column, row);
     let (column, row) = cells.filter(|cell| under(*cell) == Some(ALL - 1)).last().unwrap();
@@ -50,7 +50,7 @@ fn the_place_survives_leaving_and_turning_granules() {
     append_byte(&place.path("pell_002.nc"));
     let mut trial = place.review(&names);
     trial.keys("Right Down x").types(":layer lat").keys("Enter");
-    trial.types(":go 1231").keys("Enter + Tab n");
+    trial.types(":go 1231").keys("Enter + 5 s 6 z n");
     assert_eq!(trial.granule(), "pell_002.nc");
     assert_eq!(trial.bench().cursor, 0);
     trial.keys("p");
@@ -61,9 +61,34 @@ fn the_place_survives_leaving_and_turning_granules() {
         assert_eq!(bench.channel_wavenumber(), Some(1231.0));
         assert_eq!(bench.pins.len(), 1);
         assert!(!bench.window.is_whole());
-        assert_eq!(trial.app.focus, Pane::Evidence);
+        assert_eq!(bench.strip_along, 1);
+        assert_eq!(trial.app.focus(), Pane::Evidence);
+        assert!(trial.app.panes.is_zoomed());
     };
     check(&trial);
     trial.leave();
     check(&place.review(&names));
+}
+
+#[test]
+fn digits_and_tab_reach_every_pane_and_one_can_have_the_screen() {
+    let (_place, mut trial) = one_granule();
+    assert!(trial.screen(80, 24).contains("Trace footprint"));
+    for (keys, title) in [
+        ("5", "= Strip bt(900) along"),
+        ("s", "= Strip bt(900) along"),
+        ("Tab", "= Evidence (0, 0)"),
+        ("Tab Tab", "= Field bt(900)"),
+        ("3", "= Trace footprint (0, 0)"),
+        ("Shift-Tab", "= Field bt(900)"),
+    ] {
+        trial.keys(keys);
+        let screen = trial.screen(80, 24);
+        assert!(screen.contains(title), "{keys}: {screen}");
+    }
+    trial.keys("5 z");
+    let screen = trial.screen(80, 24);
+    assert!(!screen.contains("Field") && screen.contains("= Strip"), "{screen}");
+    trial.keys("Esc");
+    assert!(trial.screen(80, 24).contains("Field"));
 }

@@ -3,55 +3,40 @@
 use ratatui::buffer::Buffer;
 use ratatui::layout::{Rect, Size};
 
+use super::{Arrangement, Pane};
+
 /// The smallest terminal that everything fits on.
 pub const SMALLEST: Size = Size { width: 80, height: 24 };
 
-/// The panes, by the names that their titles begin with.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
-pub enum Pane {
-    /// The granules in hand.
-    Tray,
-    /// The footprint map.
-    Field,
-    /// The spectrum.
-    Trace,
-    /// What is known of the footprint under the cursor.
-    Evidence,
+/// The parts of the screen that panes lie in.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Part {
+    /// Narrow, at the left.
+    Left,
+    /// Between left and right.
+    Middle,
+    /// At the right.
+    Right,
+    /// Below the right part, on a screen of middle size.
+    Corner,
+    /// A second column at the right, its upper part, on a wide screen.
+    First,
+    /// Below the first part.
+    Second,
+    /// Below the second part.
+    Third,
+    /// Across the whole width, below everything else.
+    Bottom,
 }
 
-impl Pane {
-    /// Every pane, in the order in which the focus goes round.
-    pub const ALL: [Self; 4] = [Self::Tray, Self::Field, Self::Evidence, Self::Trace];
+/// The smallest screen that has corners, and the smallest that has a second column at the right.
+const ROOMIER: [Size; 2] = [Size { width: 110, height: 36 }, Size { width: 170, height: 48 }];
 
-    /// The name that the title begins with.
-    pub fn name(self) -> &'static str {
-        match self {
-            Self::Tray => "Tray",
-            Self::Field => "Field",
-            Self::Trace => "Trace",
-            Self::Evidence => "Evidence",
-        }
-    }
-
-    /// The next one, or the one before, round and round.
-    pub fn step(self, forward: bool) -> Self {
-        let count = Self::ALL.len();
-        let here = Self::ALL.iter().position(|pane| *pane == self).unwrap_or(0);
-        Self::ALL[(here + if forward { 1 } else { count - 1 }) % count]
-    }
-}
-
-/// The rectangles of one screen. A pane that is not on show has none.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+/// The rectangles of one screen.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
 pub struct ScreenLayout {
-    /// The granules in hand, narrow at the left.
-    pub tray: Option<Rect>,
-    /// The footprint map.
-    pub field: Option<Rect>,
-    /// What is known of a footprint, at the right.
-    pub evidence: Option<Rect>,
-    /// The spectrum, across the full width.
-    pub trace: Option<Rect>,
+    /// The panes on show and where.
+    panes: Vec<(Pane, Rect)>,
     /// One line: what happened last and the counts.
     pub status: Rect,
     /// The last line: hints, or the command line while one is typed.
@@ -59,66 +44,99 @@ pub struct ScreenLayout {
 }
 
 impl ScreenLayout {
-    /// The layout of a screen, all panes or only the one that is zoomed.
-    /// `None` where the terminal is smaller than [`SMALLEST`].
-    pub fn of(screen: Rect, zoomed: Option<Pane>) -> Option<Self> {
+    /// The layout of a screen. Of the panes that share a part the one that had the keys last is
+    /// shown, or the first where none had. `None` where the terminal is smaller than [`SMALLEST`].
+    pub fn of(screen: Rect, arrangement: &Arrangement) -> Option<Self> {
         if screen.width < SMALLEST.width || screen.height < SMALLEST.height {
             return None;
         }
         let lines = |y: u16, height: u16| Rect { y: screen.y + y, height, ..screen };
-        let mut layout = Self {
-            status: lines(screen.height - 2, 1),
-            command: lines(screen.height - 1, 1),
-            ..Self::default()
-        };
         let room = lines(0, screen.height - 2);
-        match zoomed {
-            Some(pane) => *layout.slot(pane) = Some(room),
-            None => layout.share(room),
-        }
-        Some(layout)
+        let panes = match arrangement.is_zoomed() {
+            true => vec![(arrangement.focus(), room)],
+            false => share(room, &in_front(screen, arrangement)),
+        };
+        let (status, command) = (lines(screen.height - 2, 1), lines(screen.height - 1, 1));
+        Some(Self { panes, status, command })
+    }
+
+    /// The panes on show and where.
+    pub fn panes(&self) -> impl Iterator<Item = (Pane, Rect)> {
+        self.panes.iter().copied()
     }
 
     /// The rectangle of a pane, if it is on show.
     pub fn area(&self, pane: Pane) -> Option<Rect> {
-        match pane {
-            Pane::Tray => self.tray,
-            Pane::Field => self.field,
-            Pane::Trace => self.trace,
-            Pane::Evidence => self.evidence,
-        }
+        self.panes.iter().find(|(one, _)| *one == pane).map(|(_, area)| *area)
     }
 
     /// The pane at a place on the screen.
     pub fn pane_at(&self, column: u16, row: u16) -> Option<Pane> {
-        Pane::ALL
-            .into_iter()
-            .find(|pane| self.area(*pane).is_some_and(|area| area.contains((column, row).into())))
+        let at = self.panes.iter().find(|(_, area)| area.contains((column, row).into()));
+        at.map(|(pane, _)| *pane)
     }
+}
 
-    fn slot(&mut self, pane: Pane) -> &mut Option<Rect> {
-        match pane {
-            Pane::Tray => &mut self.tray,
-            Pane::Field => &mut self.field,
-            Pane::Trace => &mut self.trace,
-            Pane::Evidence => &mut self.evidence,
+/// The pane in front in each part that has any.
+fn in_front(screen: Rect, arrangement: &Arrangement) -> Vec<(Part, Pane)> {
+    let holds = |size: &&Size| screen.width >= size.width && screen.height >= size.height;
+    let room = ROOMIER.iter().filter(holds).count();
+    let mut front: Vec<(Part, Pane)> = Vec::new();
+    for pane in Pane::all() {
+        let Some(part) = pane.part(room) else { continue };
+        match front.iter_mut().find(|(taken, _)| *taken == part) {
+            None => front.push((part, pane)),
+            Some((_, other)) => {
+                let rank = |pane| arrangement.rank(pane).unwrap_or(usize::MAX);
+                if rank(pane) < rank(*other) {
+                    *other = pane;
+                }
+            }
         }
     }
+    front
+}
 
-    /// The Trace takes two fifths of the height and the whole width; above it the Field takes what
-    /// the Tray and the Evidence leave, which grow less than the screen does.
-    fn share(&mut self, room: Rect) {
-        let trace = (room.height * 2 / 5).max(9);
-        let above = room.height - trace;
-        let tray = (room.width / 6).clamp(17, 30);
-        let evidence = (room.width * 4 / 11).clamp(29, 46);
-        let field = room.width - tray - evidence;
-        let column = |x: u16, width: u16| Rect { x: room.x + x, width, height: above, ..room };
-        self.tray = Some(column(0, tray));
-        self.field = Some(column(tray, field));
-        self.evidence = Some(column(tray + field, evidence));
-        self.trace = Some(Rect { y: room.y + above, height: trace, ..room });
-    }
+/// Shares the room out. What lies at the bottom, the spectrum as a rule, takes two fifths of the
+/// height and the whole width; above it the middle takes what the others leave, which grow less than
+/// the screen does.
+fn share(room: Rect, front: &[(Part, Pane)]) -> Vec<(Pane, Rect)> {
+    let pane_in = |part: Part| front.iter().find(|(one, _)| *one == part).map(|(_, pane)| *pane);
+    let bottom = (room.height * 2 / 5).max(9);
+    let above = room.height - bottom;
+    let column = |x: u16, width: u16| Rect { x: room.x + x, width, height: above, ..room };
+    let left = (room.width / 6).clamp(17, 26);
+    let right = (room.width * 4 / 11).clamp(29, 46);
+    let stacked: Vec<Pane> =
+        [Part::First, Part::Second, Part::Third].into_iter().filter_map(pane_in).collect();
+    let second = if stacked.is_empty() { 0 } else { (room.width / 4).min(56) };
+    let middle = room.width - left - right - second;
+    let (beside, corner) = split(column(left + middle, right), pane_in(Part::Corner).is_some());
+    let mut panes: Vec<(Option<Pane>, Rect)> = vec![
+        (pane_in(Part::Left), column(0, left)),
+        (pane_in(Part::Middle), column(left, middle)),
+        (pane_in(Part::Right), beside),
+        (pane_in(Part::Corner), corner),
+        (pane_in(Part::Bottom), Rect { y: room.y + above, height: bottom, ..room }),
+    ];
+    let stack = even(column(left + middle + right, second), stacked.len());
+    panes.extend(stacked.into_iter().map(Some).zip(stack));
+    panes.into_iter().filter_map(|(pane, area)| Some((pane?, area))).collect()
+}
+
+/// A part and the corner below it, which takes two fifths of the height.
+fn split(area: Rect, has_corner: bool) -> (Rect, Rect) {
+    let corner = if has_corner { (area.height * 2 / 5).max(9) } else { 0 };
+    let upper = Rect { height: area.height - corner, ..area };
+    (upper, Rect { y: upper.bottom(), height: corner, ..area })
+}
+
+/// An area in so many parts, one above the other.
+fn even(area: Rect, parts: usize) -> Vec<Rect> {
+    let edge = |part: usize| (usize::from(area.height) * part / parts.max(1)) as u16;
+    let part =
+        |part: usize| Rect { y: area.y + edge(part), height: edge(part + 1) - edge(part), ..area };
+    (0..parts).map(part).collect()
 }
 
 /// What stands on a screen that is too small to work on.
@@ -148,27 +166,59 @@ mod tests {
     use crate::ui::widgets::Screen;
     use proptest::prelude::*;
 
+    fn layout(width: u16, height: u16, focus: &[Pane]) -> ScreenLayout {
+        let mut arrangement = Arrangement::default();
+        for pane in focus {
+            arrangement.focus_on(*pane);
+        }
+        ScreenLayout::of(Rect::new(0, 0, width, height), &arrangement).unwrap()
+    }
+
+    fn names(layout: &ScreenLayout) -> Vec<&'static str> {
+        Pane::all().filter(|pane| layout.area(*pane).is_some()).map(Pane::name).collect()
+    }
+
     #[test]
-    fn the_smallest_screen_shows_every_pane() {
-        let layout = ScreenLayout::of(Rect::new(0, 0, 80, 24), None).unwrap();
-        assert_eq!(layout.tray, Some(Rect::new(0, 0, 17, 13)));
-        assert_eq!(layout.field, Some(Rect::new(17, 0, 34, 13)));
-        assert_eq!(layout.evidence, Some(Rect::new(51, 0, 29, 13)));
-        assert_eq!(layout.trace, Some(Rect::new(0, 13, 80, 9)));
+    fn the_smallest_screen_shows_four_panes() {
+        let layout = layout(80, 24, &[]);
+        assert_eq!(layout.area(Pane::Tray), Some(Rect::new(0, 0, 17, 13)));
+        assert_eq!(layout.area(Pane::Field), Some(Rect::new(17, 0, 34, 13)));
+        assert_eq!(layout.area(Pane::Evidence), Some(Rect::new(51, 0, 29, 13)));
+        assert_eq!(layout.area(Pane::Trace), Some(Rect::new(0, 13, 80, 9)));
         assert_eq!(layout.status, Rect::new(0, 22, 80, 1));
         assert_eq!(layout.command, Rect::new(0, 23, 80, 1));
+        assert_eq!(names(&layout), ["Tray", "Field", "Trace", "Evidence"]);
+    }
+
+    #[test]
+    fn panes_that_share_a_part_take_turns() {
+        let strip = layout(80, 24, &[Pane::Strip, Pane::Field]);
+        assert_eq!(names(&strip), ["Tray", "Field", "Strip", "Evidence"]);
+        let trace = layout(80, 24, &[Pane::Strip, Pane::Trace, Pane::Field]);
+        assert_eq!(names(&trace), ["Tray", "Field", "Trace", "Evidence"]);
+    }
+
+    #[test]
+    fn the_widest_screen_shows_every_pane() {
+        let layout = layout(200, 60, &[]);
+        assert_eq!(layout.panes().count(), Pane::all().count());
+        let trace = layout.area(Pane::Trace).unwrap();
+        assert_eq!((trace.width, trace.height), (200, 23));
     }
 
     #[test]
     fn a_zoomed_pane_has_the_screen_but_for_the_last_two_lines() {
-        let layout = ScreenLayout::of(Rect::new(0, 0, 120, 40), Some(Pane::Trace)).unwrap();
-        assert_eq!(layout.trace, Some(Rect::new(0, 0, 120, 38)));
-        assert_eq!((layout.tray, layout.field, layout.evidence), (None, None, None));
+        let mut arrangement = Arrangement::default();
+        arrangement.focus_on(Pane::Trace);
+        arrangement.zoom(true);
+        let layout = ScreenLayout::of(Rect::new(0, 0, 120, 40), &arrangement).unwrap();
+        assert_eq!(layout.panes, [(Pane::Trace, Rect::new(0, 0, 120, 38))]);
     }
 
     #[test]
     fn a_screen_that_is_too_small_says_what_it_needs() {
-        assert_eq!(ScreenLayout::of(Rect::new(0, 0, 79, 24), None), None);
+        let small = ScreenLayout::of(Rect::new(0, 0, 79, 24), &Arrangement::default());
+        assert_eq!(small, None);
         let mut screen = Screen::new(30, 4);
         draw_too_small(screen.area(), &mut screen.buffer);
         assert_eq!(
@@ -182,22 +232,14 @@ mod tests {
         );
     }
 
-    #[test]
-    fn the_focus_goes_round_both_ways() {
-        let round = Pane::ALL.iter().fold(Pane::Field, |pane, _| pane.step(true));
-        assert_eq!(round, Pane::Field);
-        for pane in Pane::ALL {
-            assert_eq!(pane.step(true).step(false), pane);
-        }
-    }
-
     proptest! {
         #[test]
-        fn panes_tile_the_screen(width in 80u16..300, height in 24u16..120) {
+        fn panes_tile_the_screen(width in 80u16..300, height in 24u16..120, last in 0usize..7) {
             let screen = Rect::new(0, 0, width, height);
-            let layout = ScreenLayout::of(screen, None).unwrap();
-            let mut areas: Vec<Rect> =
-                Pane::ALL.iter().filter_map(|pane| layout.area(*pane)).collect();
+            let focus = Pane::all().nth(last % Pane::all().count()).unwrap();
+            let layout = layout(width, height, &[focus]);
+            prop_assert!(layout.area(focus).is_some(), "the pane with the keys is on show");
+            let mut areas: Vec<Rect> = layout.panes().map(|(_, area)| area).collect();
             areas.extend([layout.status, layout.command]);
             let covered: u32 = areas.iter().map(|area| area.area()).sum();
             prop_assert_eq!(covered, screen.area());
@@ -205,8 +247,8 @@ mod tests {
                 prop_assert_eq!(one.intersection(screen), *one);
                 prop_assert!(areas[index + 1..].iter().all(|other| !one.intersects(*other)));
             }
-            for pane in Pane::ALL {
-                let area = layout.area(pane).unwrap();
+            for (pane, area) in layout.panes() {
+                prop_assert!(area.width >= 17 && area.height >= 9, "{:?} has {:?}", pane, area);
                 prop_assert_eq!(layout.pane_at(area.right() - 1, area.y), Some(pane));
             }
         }
@@ -215,7 +257,7 @@ mod tests {
         fn any_size_is_survived(width in 0u16..250, height in 0u16..80) {
             let mut screen = Screen::new(width, height);
             draw_too_small(screen.area(), &mut screen.buffer);
-            ScreenLayout::of(screen.area(), Some(Pane::Field));
+            ScreenLayout::of(screen.area(), &Arrangement::default());
         }
     }
 }

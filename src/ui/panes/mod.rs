@@ -10,11 +10,16 @@ pub mod help;
 pub mod messages;
 pub mod prompt;
 pub mod status;
+pub mod strip;
 pub mod trace;
 pub mod tray;
 
 #[cfg(test)]
 mod any_size;
+mod arrangement;
 mod layout;
+mod pane;
 
-pub use layout::{Pane, SMALLEST, ScreenLayout, draw_too_small};
+pub use arrangement::Arrangement;
+pub use layout::{SMALLEST, ScreenLayout, draw_too_small};
+pub use pane::Pane;

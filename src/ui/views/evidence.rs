@@ -1,6 +1,8 @@
 //! What the Evidence shows of the footprint under the cursor.
 
 use jiff::Timestamp;
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
 
 use crate::flags::{Act, Decision, Scope, standing};
 use crate::review::Record;
@@ -9,10 +11,24 @@ use crate::ui::app::App;
 use crate::ui::bench::{Bench, RecordState};
 use crate::ui::colour::Tone;
 use crate::ui::deciding;
-use crate::ui::panes::evidence::EvidenceRow;
+use crate::ui::panes::Pane;
+use crate::ui::panes::evidence::{self, EvidenceRow, EvidenceView};
 
 /// Decisions about one footprint that are shown; the latest count most.
 const MOST_DECISIONS: usize = 6;
+
+/// Draws the Evidence.
+pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
+    let rows = evidence_rows(app);
+    let title = app.bench().map(|bench| bench.position_words(bench.cursor)).unwrap_or_default();
+    let view = EvidenceView {
+        title: &title,
+        rows: &rows,
+        scroll: app.evidence_scroll,
+        focused: app.focus() == Pane::Evidence,
+    };
+    evidence::draw(&view, &app.theme, area, buffer);
+}
 
 /// The rows, in order: what was decided, indices, windows, quality, geolocation.
 pub fn evidence_rows(app: &App) -> Vec<EvidenceRow> {

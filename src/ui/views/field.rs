@@ -1,5 +1,8 @@
 //! What the Field is drawn from.
 
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+
 use crate::flags::Scope;
 use crate::ui::app::{App, Table};
 use crate::ui::bench::Bench;
@@ -7,9 +10,15 @@ use crate::ui::colour::Scale;
 use crate::ui::panes::Pane;
 use crate::ui::panes::field::{self, FieldView, FlagSign, Pin, Placement};
 
+/// Draws the Field.
+pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
+    let parts = FieldParts::of(app);
+    field::draw(&parts.view(app), &app.theme, area, buffer);
+}
+
 /// The parts of the view that are made for one drawing.
 #[derive(Default)]
-pub struct FieldParts {
+struct FieldParts {
     title: String,
     empty: Placement,
     pending: Vec<bool>,
@@ -21,7 +30,7 @@ pub struct FieldParts {
 
 impl FieldParts {
     /// The parts for the present state.
-    pub fn of(app: &App) -> FieldParts {
+    fn of(app: &App) -> FieldParts {
         let Some(bench) = app.bench() else {
             return FieldParts { title: title_without_granule(app), ..FieldParts::default() };
         };
@@ -41,7 +50,7 @@ impl FieldParts {
     }
 
     /// The view.
-    pub fn view<'a>(&'a self, app: &'a App) -> FieldView<'a> {
+    fn view<'a>(&'a self, app: &'a App) -> FieldView<'a> {
         let bench = app.bench();
         FieldView {
             title: &self.title,
@@ -57,14 +66,14 @@ impl FieldParts {
             corners: bench.and_then(|bench| Some((bench.anchor?, bench.cursor))),
             pins: &self.pins,
             zoom: bench.map_or(0, |bench| bench.field_zoom),
-            focused: app.focus == Pane::Field,
+            focused: app.focus() == Pane::Field,
         }
     }
 }
 
 /// The footprint under a cell of the screen.
 pub fn footprint_under(app: &App, column: u16, row: u16) -> Option<usize> {
-    let area = app.layout?.field?;
+    let area = app.area_of(Pane::Field)?;
     let bench = app.bench()?;
     // Only what decides where cells lie is needed.
     let parts = FieldParts::default();

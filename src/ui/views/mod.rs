@@ -7,18 +7,37 @@ mod field;
 mod help;
 mod overlay;
 mod status;
+mod strip;
 mod trace;
 mod tray;
 
 pub use evidence::evidence_rows;
-pub use field::{FieldParts, footprint_under};
+pub use field::footprint_under;
 pub use help::{help_groups, problem_rows};
 pub use overlay::draw_overlay;
 pub use status::{hints, side_preview, status_facts};
-pub use trace::{TraceParts, wavenumber_under};
-pub use tray::{draw_tray, tray_row_under};
+pub use strip::strip_footprint_under;
+pub use trace::wavenumber_under;
+pub use tray::tray_row_under;
+
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
 
 use crate::layers::LayerUnit;
+use crate::ui::app::App;
+use crate::ui::panes::Pane;
+
+/// Draws a pane.
+pub fn draw_pane(app: &App, pane: Pane, area: Rect, buffer: &mut Buffer) {
+    let draw = match pane {
+        Pane::Tray => tray::draw,
+        Pane::Field => field::draw,
+        Pane::Trace => trace::draw,
+        Pane::Strip => strip::draw,
+        Pane::Evidence => evidence::draw,
+    };
+    draw(app, area, buffer);
+}
 
 /// A value in five digits: `287.43`, `-0.12500`, `1.2346e-7`.
 fn number(value: f64) -> String {

@@ -50,7 +50,7 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
             (Action::Assess, "looked at"),
             (Action::Cancel, "let go"),
         ]
-    } else if app.focus == Pane::Tray {
+    } else if app.focus() == Pane::Tray {
         &[
             (Action::Open, "open"),
             (Action::Down, "down"),

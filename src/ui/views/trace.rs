@@ -1,5 +1,8 @@
 //! What the Trace is drawn from.
 
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+
 use crate::review::{BandSpectrum, Spectrum};
 use crate::spectral::ABSORPTION_BANDS;
 use crate::ui::app::{App, Table};
@@ -9,9 +12,15 @@ use crate::ui::panes::Pane;
 use crate::ui::panes::trace::{self, BandName, ChannelMark, Curve, Segment, TraceView};
 use crate::units::RadianceUnit;
 
+/// Draws the Trace.
+pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
+    let parts = TraceParts::of(app);
+    parts.with_view(app, |view| trace::draw(view, &app.theme, area, buffer));
+}
+
 /// The parts of the view that are made for one drawing.
 #[derive(Default)]
-pub struct TraceParts {
+struct TraceParts {
     title: String,
     unit: String,
     empty: String,
@@ -22,7 +31,7 @@ pub struct TraceParts {
 
 impl TraceParts {
     /// The parts for the present state.
-    pub fn of(app: &App) -> TraceParts {
+    fn of(app: &App) -> TraceParts {
         let Some(bench) = app.bench() else {
             let opening = matches!(app.table, Table::Opening { .. });
             let empty = if opening { "opening…" } else { "no granule is on the table" };
@@ -49,7 +58,7 @@ impl TraceParts {
     }
 
     /// Draws with the view, which borrows from lists that live as long as the drawing.
-    pub fn with_view<R>(&self, app: &App, draw: impl FnOnce(&TraceView<'_>) -> R) -> R {
+    fn with_view<R>(&self, app: &App, draw: impl FnOnce(&TraceView<'_>) -> R) -> R {
         let bands: Vec<BandName<'_>> = ABSORPTION_BANDS
             .iter()
             .map(|band| BandName { label: band.label, low: band.low, high: band.high })
@@ -80,14 +89,14 @@ impl TraceParts {
             channel: mark.map(|wavenumber| ChannelMark { wavenumber, words: &self.words }),
             bands: &bands,
             empty: &self.empty,
-            focused: app.focus == Pane::Trace,
+            focused: app.focus() == Pane::Trace,
         })
     }
 }
 
 /// The wavenumber (cm-1) under a cell of the screen.
 pub fn wavenumber_under(app: &App, column: u16, row: u16) -> Option<f64> {
-    let area = app.layout?.trace?;
+    let area = app.area_of(Pane::Trace)?;
     let parts = TraceParts::of(app);
     parts.with_view(app, |view| trace::wavenumber_at(view, area, column, row))
 }

@@ -10,20 +10,20 @@ use crate::ui::panes::Pane;
 use crate::ui::panes::tray::{self, TrayRow, TrayShares, TrayState, TrayView};
 
 /// Draws the Tray.
-pub fn draw_tray(app: &App, area: Rect, buffer: &mut Buffer) {
+pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     with_view(app, |view| tray::draw(view, &app.theme, area, buffer));
 }
 
 /// The row under a cell of the screen.
 pub fn tray_row_under(app: &App, column: u16, row: u16) -> Option<usize> {
-    let area = app.layout?.tray?;
+    let area = app.area_of(Pane::Tray)?;
     with_view(app, |view| tray::row_at(view, area, column, row))
 }
 
 fn with_view<R>(app: &App, use_view: impl FnOnce(&TrayView<'_>) -> R) -> R {
     let rows = tray_rows(app);
     let current = app.current_entry().unwrap_or(0);
-    let focused = app.focus == Pane::Tray;
+    let focused = app.focus() == Pane::Tray;
     let cursor = if focused { app.tray_cursor } else { current };
     use_view(&TrayView { rows: &rows, current, cursor, focused })
 }
