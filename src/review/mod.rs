@@ -20,5 +20,5 @@ pub use record::Record;
 pub use review::Review;
 pub use rulebook_of::{NoRulebook, rulebook_of};
 pub use spectrum::{BandSpectrum, Spectrum};
-pub use tests_decide::{Recorded, test_acts};
+pub use tests_decide::{OnRecord, Recorded, test_acts};
 pub use verbs::Refusal;

@@ -19,6 +19,20 @@ pub struct Recorded {
     pub others: Vec<String>,
 }
 
+/// How what tests say compares with the tests' decisions that stand in the ledgers.
+#[derive(Debug, Clone, Default, PartialEq, Eq)]
+pub enum OnRecord {
+    /// No test's decision stands.
+    #[default]
+    Nothing,
+    /// The ledgers hold just this.
+    Same,
+    /// They hold another outcome of the rulebook of this name: "rulebook NAME (fingerprint)".
+    Differs(String),
+    /// They hold decisions of other rulebooks only, by name.
+    Others(String),
+}
+
 /// What the tests decide about a granule, each with its reason.
 pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     let all = || 0..screened.footprints();
@@ -41,6 +55,12 @@ pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     acts
 }
 
+fn say_the_same(decisions: &[Decision], acts: &[(Act, Option<String>)]) -> bool {
+    let same =
+        |(old, new): (&Decision, &(Act, Option<String>))| (&old.act, &old.why) == (&new.0, &new.1);
+    decisions.len() == acts.len() && decisions.iter().zip(acts).all(same)
+}
+
 fn flag_act(flag: &str, footprints: FootprintSet) -> Act {
     Act::Flag { flag: flag.to_owned(), footprints, bands: None }
 }
@@ -61,10 +81,7 @@ impl Record {
         let acts = test_acts(screened);
         let (earlier, others) = self.standing_tests(name);
         let mut recorded = Recorded { others, ..Recorded::default() };
-        let same = |(old, new): (&Decision, &(Act, Option<String>))| {
-            (&old.act, &old.why) == (&new.0, &new.1)
-        };
-        if earlier.len() == acts.len() && earlier.iter().zip(&acts).all(same) {
+        if say_the_same(&earlier, &acts) {
             recorded.unchanged = true;
             return Ok(recorded);
         }
@@ -79,6 +96,18 @@ impl Record {
         }
         self.fold();
         Ok(recorded)
+    }
+
+    /// Compares what tests say with what stands in the ledgers.
+    pub fn compare_tests(&self, screened: &Screened) -> OnRecord {
+        let (own, others) = self.standing_tests(&screened.rulebook.name);
+        match own.last() {
+            None if others.is_empty() => OnRecord::Nothing,
+            None => OnRecord::Others(others.join(", ")),
+            Some(_) if say_the_same(&own, &test_acts(screened)) => OnRecord::Same,
+            // The last says which rulebook it was.
+            Some(last) => OnRecord::Differs(last.why.clone().unwrap_or_default()),
+        }
     }
 
     /// Whether the campaign has all of the flags.

@@ -16,6 +16,7 @@ use super::jobs::{Answer, Job};
 use super::looking;
 use super::panes::Arrangement;
 use super::place::Place;
+use super::screening;
 use super::shown_layer::ShownLayer;
 use super::turning;
 
@@ -31,6 +32,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Layer { request, found } => layer(app, request, found),
         Answer::Indices { request, found } => indices(app, request, found),
         Answer::Quality { request, found } => quality(app, request, found),
+        Answer::Screened { request, found } => screening::take(app, request, found),
         Answer::Spectrum { request, found } => spectrum(app, request, found),
         Answer::Exported { request, found } => exported(app, request, found),
     }
@@ -107,6 +109,7 @@ fn filled(app: &mut App, request: u64, found: Result<(), String>) -> Vec<Job> {
     // Whatever is on its way was begun without the last of the spectra.
     let mut jobs = looking::refresh_layer(app);
     jobs.extend(looking::refresh_indices(app));
+    jobs.extend(screening::start(app));
     looking::fill_pins(app);
     jobs
 }
@@ -138,6 +141,7 @@ fn record(
         Ok((record, place)) => {
             let problem = record.problems().first().cloned();
             bench.record = RecordState::Open(record);
+            bench.compare_tests();
             let asked_early = std::mem::take(&mut bench.asked_early);
             deciding::update_tray(app);
             if let Some(problem) = problem {
@@ -164,6 +168,7 @@ fn reread(app: &mut App, request: u64, found: LedgerReading) -> Vec<Job> {
     bench.awaited.reread = 0;
     let new = bench.record.open_mut().map_or(0, |record| record.take_over(found));
     if new > 0 {
+        bench.compare_tests();
         app.changed = true;
         deciding::update_tray(app);
         app.say(format!("{new} decisions of others came in"));

@@ -7,7 +7,7 @@ use crate::flags::FootprintSet;
 use crate::granule::Channel;
 use crate::review::{Review, Spectrum};
 
-pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState};
+pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState, Tests};
 use super::channels::Channels;
 use super::overlay::Selection;
 use super::panes::Arrangement;
@@ -55,6 +55,8 @@ pub struct Bench {
     pub pins: Vec<Pinned>,
     /// The indices of the Evidence: expression and values or why there are none.
     pub indices: Vec<Index>,
+    /// What the tests say.
+    pub tests: Tests,
     /// The window channels of the Evidence.
     pub windows: Vec<Channel>,
     /// What the producer says about quality: variables with their values.
@@ -116,6 +118,7 @@ impl Bench {
             spectrum_problem: None,
             pins: Vec::new(),
             indices,
+            tests: Tests::default(),
             windows,
             quality: Vec::new(),
             window: SpectrumWindow::whole(low, high),
@@ -129,6 +132,14 @@ impl Bench {
             touched: false,
             review,
         }
+    }
+
+    /// Compares what the tests say with what stands in the ledgers.
+    pub fn compare_tests(&mut self) {
+        let record = self.record.open();
+        let both = self.tests.screened.as_deref().zip(record);
+        let compared = both.map(|(screened, record)| record.compare_tests(screened));
+        self.tests.on_record = compared.unwrap_or_default();
     }
 
     /// How many footprints there are.

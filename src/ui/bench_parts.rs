@@ -1,6 +1,9 @@
 //! What a granule on the table is made of, as the screen holds it.
 
-use crate::review::{Record, Spectrum};
+use std::sync::Arc;
+
+use crate::review::{OnRecord, Record, Spectrum};
+use crate::screening::Screened;
 use crate::system::Cancel;
 
 /// What was decided about the granule.
@@ -76,6 +79,19 @@ pub struct Filling {
     pub problem: Option<String>,
 }
 
+/// What the tests of the rulebook say about the granule.
+#[derive(Default)]
+pub struct Tests {
+    /// Ends the job that runs them.
+    pub cancel: Cancel,
+    /// What they say, once they have run over all spectra.
+    pub screened: Option<Arc<Screened>>,
+    /// How that compares with what stands in the ledgers as tests' decisions.
+    pub on_record: OnRecord,
+    /// Why they could not run, if so.
+    pub problem: Option<String>,
+}
+
 /// The numbers of requests whose answers are waited for; 0 is none.
 #[derive(Debug, Clone, Copy, Default)]
 pub struct Awaited {
@@ -91,6 +107,8 @@ pub struct Awaited {
     pub indices: u64,
     /// Reading what the producer says about quality.
     pub quality: u64,
+    /// Running the tests.
+    pub screen: u64,
     /// Writing an export.
     pub export: u64,
 }

@@ -6,6 +6,7 @@ use std::sync::Arc;
 use crate::flags::{GranuleIdentity, LedgerReading};
 use crate::layers::Layer;
 use crate::review::{Record, Review, Spectrum};
+use crate::screening::Screened;
 use crate::system::Cancel;
 use crate::tray::Standing;
 
@@ -76,6 +77,15 @@ pub enum Job {
         request: u64,
         /// The granule.
         review: Arc<Review>,
+    },
+    /// Run the campaign's rulebook, or the built-in one, over all spectra.
+    Screen {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// Ends it early.
+        cancel: Cancel,
     },
     /// Read one spectrum before all others.
     Spectrum {
@@ -170,6 +180,13 @@ pub enum Answer {
         request: u64,
         /// The variables with their values.
         found: Vec<Quality>,
+    },
+    /// The tests have run, or could not.
+    Screened {
+        /// The request.
+        request: u64,
+        /// What they say.
+        found: Result<Arc<Screened>, String>,
     },
     /// A spectrum was read.
     Spectrum {

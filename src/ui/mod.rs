@@ -3,7 +3,8 @@
 //! One thread owns the screen. Whatever happens arrives as an event; `update` changes the state and
 //! names the jobs to be run; `draw` only reads.
 //!
-//! Uses: `system`, `units`, `spectral`, `netcdf_files`, `granule`, `layers`, `flags`, `review`, `tray`.
+//! Uses: `system`, `units`, `spectral`, `netcdf_files`, `granule`, `layers`,
+//! `screening`, `flags`, `review`, `tray`.
 //!
 //! **Never** computes physics.
 
@@ -37,6 +38,9 @@ mod place;
 mod prompts;
 mod run;
 mod runner;
+mod screening;
+#[cfg(test)]
+mod screening_tests;
 mod shown_layer;
 mod side;
 mod signals;

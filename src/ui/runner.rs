@@ -27,6 +27,8 @@ enum Lane {
     Indices,
     /// Spectra, likewise.
     Spectrum,
+    /// Tests, likewise.
+    Screen,
     /// Everything in its turn.
     InTurn,
     /// A thread of its own at once: may hang on a file until the reader's limit.
@@ -38,6 +40,7 @@ fn lane_of(job: &Job) -> Lane {
         Job::Layer { .. } => Lane::Layer,
         Job::Indices { .. } => Lane::Indices,
         Job::Spectrum { .. } => Lane::Spectrum,
+        Job::Screen { .. } => Lane::Screen,
         Job::Standing { .. } => Lane::InTurn,
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {
             Lane::Alone

@@ -156,6 +156,7 @@ pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: St
 fn put_away(app: &mut App) {
     let Table::Bench(bench) = std::mem::replace(&mut app.table, Table::Empty) else { return };
     bench.filling.cancel.cancel();
+    bench.tests.cancel.cancel();
     if let RecordState::Open(record) = bench.record
         && record.pending() > 0
     {

@@ -7,7 +7,7 @@ use super::key::{Code, Key};
 use super::keys::{self, Action};
 use super::overlay::Overlay;
 use super::panes::Pane;
-use super::{answers, deciding, looking, moving, prompts, turning, typing};
+use super::{answers, deciding, looking, moving, prompts, screening, turning, typing};
 
 /// Changes the state by an event and names the jobs to be started.
 pub fn update(app: &mut App, event: Event) -> Vec<Job> {
@@ -78,6 +78,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
             deciding::decide(app, action)
         }
         A::SignOff | A::Reopen => deciding::decide(app, action),
+        A::RunTests => screening::start(app),
         A::Export => deciding::export(app, None),
         A::AskLayer | A::AskChannel | A::Side | A::Comment | A::SetAside | A::Command => {
             prompts::open(app, action)
@@ -136,7 +137,8 @@ fn next_pane(app: &App, forward: bool) -> Pane {
     pane
 }
 
-/// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, then the message.
+/// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, running tests, then
+/// the message.
 fn cancel(app: &mut App) -> Vec<Job> {
     let dropped = app.bench_mut().is_some_and(super::bench::Bench::drop_selection);
     if app.leaving {
@@ -146,7 +148,7 @@ fn cancel(app: &mut App) -> Vec<Job> {
         turning::give_up_opening(app);
     } else if !dropped && app.panes.is_zoomed() {
         app.panes.zoom(false);
-    } else if !dropped {
+    } else if !dropped && !screening::give_up(app) {
         app.say("");
     }
     Vec::new()

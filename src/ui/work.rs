@@ -6,7 +6,8 @@ use std::time::{Duration, Instant};
 
 use crate::flags::{FlagState, read_ledgers};
 use crate::granule::{GranuleError, VariableRole};
-use crate::review::{ExportedBy, Record, Review};
+use crate::review::{ExportedBy, Record, Review, rulebook_of};
+use crate::screening::Screened;
 use crate::system::Cancel;
 use crate::tray::Standing;
 
@@ -50,6 +51,12 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         Job::Quality { request, review } => {
             send(Answer::Quality { request: *request, found: quality(review) });
         }
+        Job::Screen { request, review, cancel } => {
+            let found = screen(review, cancel, outside).transpose();
+            if let Some(found) = found {
+                send(Answer::Screened { request: *request, found: found.map(Arc::new) });
+            }
+        }
         Job::Spectrum { request, review, footprint } => {
             let found = review.read_spectrum(*footprint).map_err(in_words);
             send(Answer::Spectrum { request: *request, found });
@@ -77,6 +84,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
             Answer::Indices { request: *request, found: texts.iter().map(|_| Err(why())).collect() }
         }
         Job::Quality { request, .. } => Answer::Quality { request: *request, found: Vec::new() },
+        Job::Screen { request, .. } => Answer::Screened { request: *request, found: Err(why()) },
         Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
         Job::Reread { .. } | Job::Keep { .. } => return None,
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
@@ -112,6 +120,18 @@ fn record(
     let now = (outside.clock)();
     let record = Record::open(&outside.campaign, identity, &outside.author, &outside.program, now);
     Ok((Box::new(record.map_err(|error| error.to_string())?), place))
+}
+
+/// Whoever cancelled it gets no answer.
+fn screen(review: &Review, cancel: &Cancel, outside: &Outside) -> Result<Option<Screened>, String> {
+    let rulebook = rulebook_of(&outside.campaign).map_err(|error| error.to_string())?;
+    match review.read_for(&rulebook, cancel) {
+        Err(GranuleError::Cancelled) => return Ok(None),
+        // What can't be read is missing, and the tests say so.
+        Ok(()) | Err(_) => {}
+    }
+    let screened = review.screen(&rulebook);
+    Ok((!cancel.is_cancelled()).then_some(screened))
 }
 
 fn quality(review: &Review) -> Vec<Quality> {

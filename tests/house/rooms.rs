@@ -39,6 +39,7 @@ const MAY_USE: &[(&str, &[&str])] = &[
             "netcdf_files",
             "granule",
             "layers",
+            "screening",
             "flags",
             "review",
             "tray",

@@ -5,6 +5,7 @@ use ratatui::layout::Rect;
 
 use super::command::{self, CommandView, Completion};
 use super::evidence::{self, EvidenceRow, EvidenceView};
+use super::margin_bar::MarginBar;
 use super::messages::{self, MessageRow, MessagesView};
 use super::prompt::{self, FlagChoice, PromptView};
 use super::status::{self, Hint, StatusView};
@@ -60,9 +61,19 @@ proptest! {
             note: text.clone(),
             tone: Tone::Warning,
         };
-        let rows =
-            [EvidenceRow::Section(text.clone()), fact, EvidenceRow::Words(text.clone(), Tone::Bad)];
-        let view = EvidenceView { title: &text, rows: &rows, scroll, focused: true };
+        let bar = MarginBar {
+            label: text.clone(),
+            margin: scroll as f64 / 1e19 - 0.9,
+            value: text.clone(),
+            note: text.clone(),
+        };
+        let rows = [
+            EvidenceRow::Section(text.clone()),
+            fact,
+            EvidenceRow::Margin(bar),
+            EvidenceRow::Words(text.clone(), Tone::Bad),
+        ];
+        let view = EvidenceView { title: &text, rows: &rows, scroll, focused: true, detailed: true };
         let mut screen = Screen::new(width, height);
         evidence::draw(&view, &theme, area, &mut screen.buffer);
     }

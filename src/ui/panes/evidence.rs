@@ -4,6 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use unicode_width::UnicodeWidthStr;
 
+use super::margin_bar::MarginBar;
 use crate::ui::colour::{Theme, Tone};
 use crate::ui::widgets::{Frame, draw_more, put, put_right, wrap};
 
@@ -18,6 +19,8 @@ pub struct EvidenceView<'a> {
     pub scroll: usize,
     /// Whether the keys go to this pane.
     pub focused: bool,
+    /// Whether tests show their sources and thresholds too.
+    pub detailed: bool,
 }
 
 /// One line of the Evidence.
@@ -38,6 +41,8 @@ pub enum EvidenceRow {
         /// How it is to be taken.
         tone: Tone,
     },
+    /// What a test says.
+    Margin(MarginBar),
     /// Running text, wrapped.
     Words(String, Tone),
 }
@@ -48,7 +53,7 @@ pub fn draw(view: &EvidenceView<'_>, theme: &Theme, area: Rect, buffer: &mut Buf
     let frame = Frame { name: "Evidence", rest: view.title, focused: view.focused };
     let Some(room) = frame.draw(theme, area, buffer) else { return };
     let inner = Rect { x: room.x + 1, width: room.width.saturating_sub(2), ..room };
-    let lines = lines(view.rows, inner.width);
+    let lines = lines(view, inner.width);
     let height = usize::from(inner.height);
     let first = view.scroll.min(lines.len().saturating_sub(height));
     let unit_width = unit_width(view.rows);
@@ -62,14 +67,15 @@ pub fn draw(view: &EvidenceView<'_>, theme: &Theme, area: Rect, buffer: &mut Buf
 enum Line<'a> {
     Section(&'a str),
     Fact(&'a EvidenceRow),
+    Margin(&'a MarginBar),
     Words(String, Tone),
     Blank,
 }
 
-fn lines(rows: &[EvidenceRow], width: u16) -> Vec<Line<'_>> {
+fn lines<'a>(view: &EvidenceView<'a>, width: u16) -> Vec<Line<'a>> {
     let width = usize::from(width);
     let mut lines = Vec::new();
-    for (index, row) in rows.iter().enumerate() {
+    for (index, row) in view.rows.iter().enumerate() {
         match row {
             EvidenceRow::Section(title) => {
                 if index > 0 {
@@ -79,12 +85,12 @@ fn lines(rows: &[EvidenceRow], width: u16) -> Vec<Line<'_>> {
             }
             EvidenceRow::Fact { note, .. } => {
                 lines.push(Line::Fact(row));
-                if !note.is_empty() {
-                    lines.extend(
-                        wrap(note, width.saturating_sub(2))
-                            .into_iter()
-                            .map(|text| Line::Words(format!("  {text}"), Tone::Faint)),
-                    );
+                lines.extend(below(note, width));
+            }
+            EvidenceRow::Margin(bar) => {
+                lines.push(Line::Margin(bar));
+                if view.detailed {
+                    lines.extend(below(&bar.note, width));
                 }
             }
             EvidenceRow::Words(text, tone) => {
@@ -93,6 +99,15 @@ fn lines(rows: &[EvidenceRow], width: u16) -> Vec<Line<'_>> {
         }
     }
     lines
+}
+
+/// A note below its row.
+fn below<'a>(note: &str, width: usize) -> Vec<Line<'a>> {
+    if note.is_empty() {
+        return Vec::new();
+    }
+    let texts = wrap(note, width.saturating_sub(2)).into_iter();
+    texts.map(|text| Line::Words(format!("  {text}"), Tone::Faint)).collect()
 }
 
 /// The width that the units need at the right, so that the values line up before them.
@@ -113,6 +128,7 @@ fn draw_line(line: &Line<'_>, unit_width: u16, theme: &Theme, row: Rect, buffer:
         Line::Words(text, tone) => {
             put(row, text, theme.style(*tone), theme.ascii, buffer);
         }
+        Line::Margin(bar) => bar.draw(theme, row, buffer),
         Line::Fact(EvidenceRow::Fact { label, value, unit, tone, .. }) => {
             let units = row.width.min(if unit_width > 0 { unit_width + 1 } else { 0 });
             let values = Rect { width: row.width - units, ..row };
@@ -159,7 +175,13 @@ mod tests {
             fact("bt(1231)", "", "", "no channel there"),
         ];
         let mut screen = Screen::new(28, 10);
-        let view = EvidenceView { title: "12, 3", rows: &rows, scroll: 0, focused: false };
+        let view = EvidenceView {
+            title: "12, 3",
+            rows: &rows,
+            scroll: 0,
+            focused: false,
+            detailed: false,
+        };
         draw(&view, &THEME, screen.area(), &mut screen.buffer);
         assert_eq!(
             screen.lines(),
@@ -182,7 +204,8 @@ mod tests {
     fn it_scrolls_and_says_that_there_is_more() {
         let rows: Vec<_> = (0..9).map(|i| fact(&format!("value {i}"), "1", "", "")).collect();
         let mut screen = Screen::new(20, 4);
-        let view = EvidenceView { title: "", rows: &rows, scroll: 3, focused: false };
+        let view =
+            EvidenceView { title: "", rows: &rows, scroll: 3, focused: false, detailed: false };
         draw(&view, &THEME, screen.area(), &mut screen.buffer);
         assert_eq!(
             screen.lines()[1..],

@@ -26,15 +26,18 @@ pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
         rows: &rows,
         scroll: app.evidence_scroll,
         focused: app.focus() == Pane::Evidence,
+        detailed: area.width >= 60 || area.height >= 34,
     };
     evidence::draw(&view, &app.theme, area, buffer);
 }
 
-/// The rows, in order: what was decided, indices, windows, quality, geolocation.
+/// The rows, in order: what was decided, what the tests say, indices, windows, quality, geolocation.
 pub fn evidence_rows(app: &App) -> Vec<EvidenceRow> {
     let Some(bench) = app.bench() else { return Vec::new() };
     let mut rows = Vec::new();
     decided(bench, &mut rows);
+    section(&mut rows, "Tests");
+    super::tests_say::tests_say(bench, &mut rows);
     indices(bench, &mut rows);
     windows(bench, &mut rows);
     quality(bench, &mut rows);

@@ -8,6 +8,7 @@ mod help;
 mod overlay;
 mod status;
 mod strip;
+mod tests_say;
 mod trace;
 mod tray;
 

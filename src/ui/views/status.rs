@@ -16,6 +16,9 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         (pending, None) => facts.push((format!("{pending} pending"), Tone::Warning)),
     }
     let Some(bench) = app.bench() else { return facts };
+    if bench.awaited.screen != 0 {
+        facts.push(("tests running, Esc ends them".to_owned(), Tone::Faint));
+    }
     if let RecordState::Open(record) = &bench.record {
         if app.pending() == 0 && record.decisions().iter().any(|one| one.by_person()) {
             facts.push(("kept".to_owned(), Tone::Good));

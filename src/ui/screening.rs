@@ -1,0 +1,59 @@
+//! The rulebook run over the granule on the table, beside the keys.
+
+use std::sync::Arc;
+
+use crate::screening::Screened;
+use crate::system::Cancel;
+
+use super::app::App;
+use super::colour::Tone;
+use super::jobs::Job;
+use super::keys::{Action, hint_key};
+use super::looking;
+
+/// Runs the tests over the granule on the table; the newest request wins.
+pub fn start(app: &mut App) -> Vec<Job> {
+    let request = app.request();
+    let Some(bench) = app.bench_mut() else { return looking::no_granule(app) };
+    if !bench.filling.done {
+        app.say("the tests run as soon as all spectra are read");
+        return Vec::new();
+    }
+    bench.tests.cancel.cancel();
+    bench.tests.cancel = Cancel::new();
+    bench.awaited.screen = request;
+    let (review, cancel) = (Arc::clone(&bench.review), bench.tests.cancel.clone());
+    vec![Job::Screen { request, review, cancel }]
+}
+
+/// Takes what the tests say.
+pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -> Vec<Job> {
+    let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.screen == request) else {
+        return Vec::new();
+    };
+    bench.awaited.screen = 0;
+    match found {
+        Ok(screened) => {
+            bench.tests.screened = Some(screened);
+            bench.tests.problem = None;
+            bench.compare_tests();
+        }
+        Err(why) => {
+            bench.tests.screened = None;
+            bench.tests.problem = Some(why.clone());
+            app.message = (format!("the tests could not run: {why}"), Tone::Bad);
+        }
+    }
+    Vec::new()
+}
+
+/// Waits for the tests no longer; false where none are running.
+pub fn give_up(app: &mut App) -> bool {
+    let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.screen != 0) else {
+        return false;
+    };
+    bench.awaited.screen = 0;
+    bench.tests.cancel.cancel();
+    app.say(format!("the tests were given up; {} runs them", hint_key(Action::RunTests)));
+    true
+}
