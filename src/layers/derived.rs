@@ -22,6 +22,10 @@ pub fn derive(name: &str, fields: &Fields<'_>) -> Result<Vec<f64>, &'static str>
         "twilight" => of_sun(|zenith| (DAY_BELOW..=NIGHT_ABOVE).contains(&zenith)),
         "night" => of_sun(|zenith| zenith > NIGHT_ABOVE),
         "glint_angle" => glint_angles(fields),
+        "season" => {
+            let times = needed("time", fields)?.iter().zip(needed("lat", fields)?);
+            Ok(times.map(|(time, latitude)| season(*time, *latitude)).collect())
+        }
         _ => Ok(needed("time", fields)?.iter().map(|time| day_of_year(*time)).collect()),
     }
 }
@@ -62,6 +66,17 @@ fn day_of_year(time: f64) -> f64 {
     let in_day = time / 86_400.0 - days;
     let year = year_of(days as i64);
     (days as i64 - days_before(year)) as f64 + in_day
+}
+
+/// From -1 in the depth of winter to 1 in the height of summer: the cosine of the year with its
+/// peak on 22 July north of the equator, a month behind the sun as ground and air are, and half a
+/// year later south of it. Source: common practice.
+fn season(time: f64, latitude: f64) -> f64 {
+    /// 22 July.
+    const WARMEST: f64 = 202.0;
+    let phase = (day_of_year(time) - WARMEST) / 365.25 * std::f64::consts::TAU;
+    // The sign of a missing latitude is missing, too.
+    phase.cos() * latitude.signum()
 }
 
 /// The year in which a day lies, counted from 1970-01-01.
@@ -107,6 +122,22 @@ mod tests {
             assert_eq!(day_of_year(moment.as_second() as f64), expected, "{text}");
         }
         assert!(day_of_year(f64::NAN).is_nan());
+    }
+
+    #[test]
+    fn seasons_turn_at_the_equator() {
+        let at = |text: &str, latitude| {
+            let moment: jiff::Timestamp = text.parse().unwrap();
+            season(moment.as_second() as f64, latitude)
+        };
+        assert_eq!(at("2026-07-22T00:00:00Z", 50.0), 1.0);
+        assert_eq!(at("2026-07-22T00:00:00Z", -50.0), -1.0);
+        // Half a year on it is the other way round, to a day's change of the cosine near its peak.
+        assert!(at("2027-01-21T00:00:00Z", 50.0) < -0.999);
+        assert!(at("2027-01-21T00:00:00Z", -50.0) > 0.999);
+        // A quarter of a year on: neither; a day moves it by 0.017.
+        assert!(at("2026-10-21T00:00:00Z", 50.0).abs() < 0.02);
+        assert!(at("2026-07-22T00:00:00Z", f64::NAN).is_nan());
     }
 
     #[test]

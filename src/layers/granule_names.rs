@@ -2,12 +2,12 @@
 
 use std::collections::BTreeMap;
 use std::ops::Range;
-use std::sync::OnceLock;
 
 use super::derived::derive;
+use super::kept::Kept;
 use super::names::{NameError, Names, Values};
 use super::neighbours::Neighbours;
-use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES};
+use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, Judgement};
 use super::unit::LayerUnit;
 use crate::granule::{Channel, Cube, Granule, Quantity};
 use crate::spectral::planck;
@@ -21,14 +21,14 @@ pub struct GranuleNames<'g> {
     granule: &'g Granule,
     cube: &'g Cube,
     definitions: Option<&'g BTreeMap<String, Expression>>,
-    kept: Option<&'g OnceLock<Neighbours>>,
-    own: OnceLock<Neighbours>,
+    kept: Option<&'g Kept>,
+    own: Kept,
 }
 
 impl<'g> GranuleNames<'g> {
     /// The names of a granule over its cube.
     pub fn new(granule: &'g Granule, cube: &'g Cube) -> Self {
-        Self { granule, cube, definitions: None, kept: None, own: OnceLock::new() }
+        Self { granule, cube, definitions: None, kept: None, own: Kept::default() }
     }
 
     /// With names that stand for expressions.
@@ -37,11 +37,14 @@ impl<'g> GranuleNames<'g> {
         self
     }
 
-    /// Keeps the neighbours where the caller can lend them again: to find them takes longer than
-    /// any layer, and they are the same as long as the granule is.
-    pub fn keeping_neighbours(mut self, place: &'g OnceLock<Neighbours>) -> Self {
-        self.kept = Some(place);
+    /// Keeps what was found out where the caller can lend it again, for the same granule.
+    pub fn keeping(mut self, kept: &'g Kept) -> Self {
+        self.kept = Some(kept);
         self
+    }
+
+    fn kept(&self) -> &Kept {
+        self.kept.unwrap_or(&self.own)
     }
 
     /// The index of each footprint along a dimension.
@@ -152,18 +155,26 @@ impl Names for GranuleNames<'_> {
             let known = all.map(|variable| variable.name.clone()).collect();
             return Err(NameError::NoVariable { name: name.to_owned(), known });
         };
-        match self.granule.read_variable(name) {
+        self.kept().variable(name, || match self.granule.read_variable(name) {
             Ok(values) => Ok(Values { values, unit: unit_of(&variable.units) }),
             Err(error) => Err(NameError::Unreadable(error.to_string())),
-        }
+        })
     }
 
     fn definition(&self, name: &str) -> Option<&Expression> {
         self.definitions?.get(name)
     }
 
+    fn judged(&self, judgement: Judgement, _of: Option<&str>) -> Result<Values, NameError> {
+        Err(NameError::NotJudged(judgement.word()))
+    }
+
+    fn cluster(&self) -> usize {
+        self.granule.footprints().lengths().iter().skip(2).product()
+    }
+
     fn neighbours(&self) -> &Neighbours {
-        self.kept.unwrap_or(&self.own).get_or_init(|| self.find_neighbours())
+        self.kept().neighbours(|| self.find_neighbours())
     }
 }
 

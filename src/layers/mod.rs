@@ -8,6 +8,7 @@ mod derived;
 mod evaluation;
 mod first_look;
 mod granule_names;
+mod kept;
 mod names;
 mod neighbours;
 mod syntax;
@@ -16,10 +17,12 @@ mod unit;
 pub use evaluation::{Layer, LayerError, channels_needed, evaluate, evaluate_all};
 pub use first_look::{FIRST_LOOK, suggestions};
 pub use granule_names::GranuleNames;
+pub use kept::Kept;
 pub use names::{NameError, Names, Values};
 pub use neighbours::Neighbours;
 pub use syntax::{
-    DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Mistake, functions,
+    DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Judgement, Mistake,
+    functions,
 };
 pub use unit::LayerUnit;
 

@@ -3,7 +3,7 @@
 use std::ops::Range;
 
 use super::neighbours::Neighbours;
-use super::syntax::Expression;
+use super::syntax::{Expression, Judgement};
 use super::unit::LayerUnit;
 use crate::granule::Channel;
 use crate::system::clean_text;
@@ -57,6 +57,12 @@ pub enum NameError {
         /// Names that there are.
         known: Vec<String>,
     },
+    /// Footprints do not stand in clusters.
+    #[error("the file has no clusters of detectors: no third dimension of footprints")]
+    NoClusters,
+    /// No tests have been run, or they are running still.
+    #[error("no screening tests have been run here that could tell {0}")]
+    NotJudged(&'static str),
     /// The file could not be read.
     #[error("{0}")]
     Unreadable(String),
@@ -111,6 +117,16 @@ pub trait Names: Sync {
 
     /// A definition by name.
     fn definition(&self, name: &str) -> Option<&Expression>;
+
+    /// What screening tests say about each footprint; `of` is a flag, or a test of `margin`.
+    ///
+    /// # Errors
+    /// No tests have been run, or there is no such flag or test.
+    fn judged(&self, judgement: Judgement, of: Option<&str>) -> Result<Values, NameError>;
+
+    /// How many footprints in a row are the detectors at one scan line and position; 1 where
+    /// footprints do not stand in clusters.
+    fn cluster(&self) -> usize;
 
     /// Which footprints lie beside which.
     fn neighbours(&self) -> &Neighbours;

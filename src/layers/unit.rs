@@ -54,6 +54,31 @@ impl LayerUnit {
         }
     }
 
+    /// Whether a sum, a difference or a comparison with `other` hardly means anything, as that of
+    /// a temperature with an angle.
+    pub fn mixes_badly_with(self, other: Self) -> bool {
+        match (self.dimension(), other.dimension()) {
+            (Some(own), Some(other)) => own != other,
+            _ => false,
+        }
+    }
+
+    /// What is measured, in a word; `None` for pure numbers, which go with everything.
+    fn dimension(self) -> Option<&'static str> {
+        match self {
+            Self::Kelvin | Self::KelvinDifference => Some("temperature"),
+            Self::Radiance => Some("radiance"),
+            Self::Degree => Some("angle"),
+            Self::Time => Some("time"),
+            Self::One | Self::Truth | Self::Index | Self::Unknown => None,
+        }
+    }
+
+    /// What is measured, for messages.
+    pub fn thing(self) -> &'static str {
+        self.dimension().unwrap_or("number")
+    }
+
     /// Of a product.
     pub fn of_product(self, other: Self) -> Self {
         match (self, other) {
@@ -106,6 +131,14 @@ mod tests {
         assert_eq!(KelvinDifference.of_sum(Kelvin, true), Unknown);
         assert_eq!(Kelvin.of_spread(), KelvinDifference);
         assert_eq!(Kelvin.of_sum(One, true), Kelvin);
+    }
+
+    #[test]
+    fn only_what_is_measured_differently_mixes_badly() {
+        assert!(Kelvin.mixes_badly_with(Degree) && Degree.mixes_badly_with(Radiance));
+        for other in [Kelvin, KelvinDifference, One, Unknown] {
+            assert!(!Kelvin.mixes_badly_with(other), "{other:?}");
+        }
     }
 
     #[test]

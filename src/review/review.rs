@@ -1,12 +1,12 @@
 //! A granule on the table, to look at: layers and spectra while it is still being read.
 
 use std::path::Path;
-use std::sync::{Arc, OnceLock};
+use std::sync::Arc;
 
 use crate::export::granule_identity;
 use crate::flags::GranuleIdentity;
 use crate::granule::{Cube, Granule, GranuleError, Opening};
-use crate::layers::{Expression, GranuleNames, Layer, Mistake, Neighbours, evaluate_all};
+use crate::layers::{Expression, GranuleNames, Kept, Layer, Mistake, evaluate_all};
 use crate::screening::{Rulebook, Screened, channels_of, screen};
 use crate::system::Cancel;
 
@@ -15,7 +15,7 @@ use crate::system::Cancel;
 pub struct Review {
     granule: Granule,
     cube: Arc<Cube>,
-    neighbours: OnceLock<Neighbours>,
+    kept: Kept,
 }
 
 impl Review {
@@ -30,7 +30,7 @@ impl Review {
     /// Puts an open granule on the table.
     pub fn of(granule: Granule) -> Review {
         let cube = granule.cube();
-        Review { granule, cube, neighbours: OnceLock::new() }
+        Review { granule, cube, kept: Kept::default() }
     }
 
     /// The granule.
@@ -45,7 +45,7 @@ impl Review {
 
     /// Its names for layer expressions.
     pub fn names(&self) -> GranuleNames<'_> {
-        GranuleNames::new(&self.granule, &self.cube).keeping_neighbours(&self.neighbours)
+        GranuleNames::new(&self.granule, &self.cube).keeping(&self.kept)
     }
 
     /// Runs the tests of a rulebook over what has been read so far.

@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 use std::ops::Range;
 
 use crate::granule::Channel;
-use crate::layers::{Expression, NameError, Names, Neighbours, Values};
+use crate::layers::{Expression, Judgement, NameError, Names, Neighbours, Values};
 
 /// Names with the definitions of a rulebook in place of their own.
 pub struct LentNames<'n> {
@@ -53,6 +53,14 @@ impl Names for LentNames<'_> {
 
     fn definition(&self, name: &str) -> Option<&Expression> {
         self.definitions.get(name)
+    }
+
+    fn judged(&self, judgement: Judgement, of: Option<&str>) -> Result<Values, NameError> {
+        self.names.judged(judgement, of)
+    }
+
+    fn cluster(&self) -> usize {
+        self.names.cluster()
     }
 
     fn neighbours(&self) -> &Neighbours {

@@ -2,10 +2,9 @@
 
 use std::collections::BTreeMap;
 use std::path::Path;
-use std::sync::OnceLock;
 
 use radsieve::granule::Granule;
-use radsieve::layers::{Expression, GranuleNames, Layer, LayerUnit, Names, evaluate};
+use radsieve::layers::{Expression, GranuleNames, Kept, Layer, LayerUnit, Names, evaluate};
 use radsieve::netcdf_files::{ReadLimits, ReaderProgram};
 use radsieve::spectral::planck;
 use radsieve::system::Cancel;
@@ -80,14 +79,13 @@ fn definitions_and_neighbours_can_be_lent() {
         let cube = granule.cube();
         let mut definitions = BTreeMap::new();
         definitions.insert("window".to_owned(), Expression::parse("bt(900)").unwrap());
-        let kept = OnceLock::new();
-        let names = GranuleNames::new(granule, &cube)
-            .with_definitions(&definitions)
-            .keeping_neighbours(&kept);
+        let kept = Kept::default();
+        let names = GranuleNames::new(granule, &cube).with_definitions(&definitions).keeping(&kept);
         let spread = layer("sd3(window)", &names);
         assert_eq!(spread.unit, LayerUnit::KelvinDifference);
         assert!(same(&spread.values, &layer("sd3(bt(900))", &names).values));
-        assert!(kept.get().is_some_and(|neighbours| neighbours == names.neighbours()));
+        let never = || unreachable!("the neighbours were kept");
+        assert_eq!(kept.neighbours(never), names.neighbours());
     });
 }
 

@@ -8,8 +8,8 @@ use super::plan::{Output, Plan, Step};
 use super::program::Source;
 use crate::granule::Channel;
 use crate::layers::names::Names;
-use crate::layers::neighbours::neighbourhood;
-use crate::layers::syntax::Expression;
+use crate::layers::neighbours::{cluster, neighbourhood};
+use crate::layers::syntax::{Around, Expression};
 
 /// The numbers of one expression.
 ///
@@ -61,8 +61,11 @@ impl Work {
                 Step::Pointwise(program) => {
                     program.run(names.footprints(), &|source| work.column(source))
                 }
-                Step::Neighbourhood(statistic, source) => {
+                Step::Neighbourhood(statistic, Around::Nine, source) => {
                     neighbourhood(*statistic, work.column(*source), names.neighbours())
+                }
+                Step::Neighbourhood(statistic, Around::Cluster, source) => {
+                    cluster(*statistic, work.column(*source), names.cluster())
                 }
             };
             work.steps.push(column);
@@ -117,7 +120,7 @@ fn not_positive(columns: &[Column], output: &Output) -> Vec<usize> {
 }
 
 fn notes(leaves: &[Leaf], columns: &[Column], output: &Output, names: &dyn Names) -> Vec<String> {
-    let mut notes: Vec<String> = Vec::new();
+    let mut notes: Vec<String> = output.remarks.clone();
     let used = || output.leaves.iter().map(|at| (&leaves[*at], &columns[*at]));
     notes.extend(used().filter_map(|(leaf, _)| leaf.note()));
     let footprints = names.footprints();

@@ -226,6 +226,38 @@ fn neighbourhoods_take_any_expression_and_name_their_guess() {
 }
 
 #[test]
+fn clusters_are_the_detectors_at_one_place() {
+    // 0.5 K from footprint to footprint, so 1.5 K from the first of four to the last.
+    let names = FakeNames::black_bodies(&[3, 2, 4]);
+    let found = layer("range_cluster(bt(900))", &names);
+    assert_eq!(found.unit, LayerUnit::KelvinDifference);
+    assert!(found.values.iter().all(|range| (range - 1.5).abs() < 1e-9));
+    assert!(found.notes.is_empty(), "nothing is guessed: {:?}", found.notes);
+    let alone = error("sd_cluster(bt(900))", &FakeNames::black_bodies(&[6, 4]));
+    assert!(alone.to_string().contains("no clusters"), "{alone}");
+    assert!(!alone.is_unknown_name());
+}
+
+#[test]
+fn whether_a_value_is_missing_can_be_asked() {
+    assert_eq!((value("missing(a)", NAN, 0.0), value("missing(a)", 3.0, 0.0)), (1.0, 0.0));
+    assert_eq!(value("missing(a / b)", 1.0, 0.0), 1.0);
+    assert_eq!(value("not missing(a) and b", 2.0, 1.0), 1.0);
+}
+
+#[test]
+fn what_hardly_goes_together_is_noted() {
+    let names = FakeNames::black_bodies(&[2]).defining("odd", "bt(900) - rad(900)");
+    for text in ["1 + odd", "bt(900) > rad(900)", "min(bt(900), rad(900), 1)"] {
+        let notes = layer(text, &names).notes.join("; ");
+        assert!(notes.contains("puts temperature and radiance together"), "{text}: {notes}");
+    }
+    for text in ["bt(900) - bt(831) + 1", "bt(900) * rad(900)", "sd3(bt(900)) < bt(900)"] {
+        assert!(!layer(text, &names).notes.join("").contains("together"), "{text}");
+    }
+}
+
+#[test]
 fn definitions_stand_for_what_they_say() {
     let names = FakeNames::black_bodies(&[3, 3])
         .defining("window", "bt(900)")

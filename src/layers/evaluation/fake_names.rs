@@ -6,7 +6,7 @@ use std::ops::Range;
 use crate::granule::Channel;
 use crate::layers::names::{NameError, Names, Values};
 use crate::layers::neighbours::Neighbours;
-use crate::layers::syntax::Expression;
+use crate::layers::syntax::{Expression, Judgement};
 use crate::layers::unit::LayerUnit;
 use crate::spectral::{brightness_temperature_or_nan, planck};
 
@@ -120,6 +120,14 @@ impl Names for FakeNames {
 
     fn definition(&self, name: &str) -> Option<&Expression> {
         self.definitions.get(name)
+    }
+
+    fn judged(&self, judgement: Judgement, _of: Option<&str>) -> Result<Values, NameError> {
+        Err(NameError::NotJudged(judgement.word()))
+    }
+
+    fn cluster(&self) -> usize {
+        self.lengths.iter().skip(2).product()
     }
 
     fn neighbours(&self) -> &Neighbours {

@@ -8,17 +8,18 @@ use super::leaves::Leaf;
 use super::program::{Operation, Program, Source};
 use crate::layers::names::{NameError, Names, Values};
 use crate::layers::syntax::{
-    Expression, Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where,
+    Around, Expression, Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where,
 };
 use crate::layers::unit::LayerUnit;
+use crate::system::clean_text;
 
 /// Steps over columns; a neighbourhood needs the whole column of what stands inside it.
 #[derive(Debug)]
 pub enum Step {
     /// Footprint by footprint.
     Pointwise(Program),
-    /// Over the neighbourhood.
-    Neighbourhood(Statistic, Source),
+    /// Over the footprints around each.
+    Neighbourhood(Statistic, Around, Source),
 }
 
 /// Where an expression's numbers come out.
@@ -32,6 +33,8 @@ pub struct Output {
     pub leaves: Vec<usize>,
     /// Whether it looks at neighbours.
     pub neighbours: bool,
+    /// What a reader should know about the expression itself.
+    pub remarks: Vec<String>,
 }
 
 /// The whole plan.
@@ -77,6 +80,7 @@ struct Draft<'t> {
     program: Program,
     leaves: Vec<usize>,
     neighbours: bool,
+    remarks: Vec<String>,
 }
 
 impl<'n> Planner<'n> {
@@ -104,9 +108,9 @@ impl<'n> Planner<'n> {
         let mut draft = Draft::of(expression.text());
         match self.node(expression.tree(), &mut draft) {
             Ok(unit) => {
-                let source = self.column(draft.program);
-                let (leaves, neighbours) = (draft.leaves, draft.neighbours);
-                Ok(Output { source, unit, leaves, neighbours })
+                let source = self.column(std::mem::take(&mut draft.program));
+                let Draft { leaves, neighbours, remarks, .. } = draft;
+                Ok(Output { source, unit, leaves, neighbours, remarks })
             }
             Err(error) => {
                 self.leaves.truncate(before.0);
@@ -127,6 +131,10 @@ impl<'n> Planner<'n> {
                 let key = node.to_string();
                 self.values(key, |names| names.variable(name), &node.span, draft)
             }
+            Kind::Judged(judgement, of) => {
+                let ask = |names: &dyn Names| names.judged(*judgement, of.as_deref());
+                self.values(node.to_string(), ask, &node.span, draft)
+            }
             Kind::Spectral(quantity, place) => self.spectral(*quantity, place, &node.span, draft),
             Kind::Planck(temperature, place) => {
                 self.node(temperature, draft)?;
@@ -141,11 +149,14 @@ impl<'n> Planner<'n> {
             Kind::Infix(infix, left, right) => {
                 let units = (self.node(left, draft)?, self.node(right, draft)?);
                 draft.add(Operation::Infix(*infix));
+                if infix.wants_one_unit() {
+                    draft.remark_on_mixed(&node.span, units);
+                }
                 Ok(unit_of_infix(*infix, units.0, units.1))
             }
-            Kind::Call(function, operands) => self.call(*function, operands, draft),
-            Kind::Neighbourhood(statistic, operand) => {
-                self.neighbourhood(*statistic, operand, draft)
+            Kind::Call(function, operands) => self.call(*function, operands, &node.span, draft),
+            Kind::Neighbourhood(statistic, around, operand) => {
+                self.neighbourhood((*statistic, *around), operand, &node.span, draft)
             }
         }
     }
@@ -154,6 +165,7 @@ impl<'n> Planner<'n> {
         &mut self,
         function: Function,
         operands: &[Node],
+        span: &Span,
         draft: &mut Draft<'_>,
     ) -> Result<LayerUnit, LayerError> {
         let mut units = Vec::new();
@@ -161,9 +173,13 @@ impl<'n> Planner<'n> {
             units.push(self.node(operand, draft)?);
         }
         draft.add(Operation::Call(function, operands.len()));
+        if let Some(pair) = units.windows(2).find(|pair| pair[0].mixes_badly_with(pair[1])) {
+            draft.remark_on_mixed(span, (pair[0], pair[1]));
+        }
         let choice = units.into_iter().reduce(LayerUnit::of_choice).unwrap_or(LayerUnit::Unknown);
         Ok(match function {
             Function::Min | Function::Max | Function::Abs => choice,
+            Function::Missing => LayerUnit::Truth,
             _ if choice == LayerUnit::One => LayerUnit::One,
             _ => LayerUnit::Unknown,
         })
@@ -171,22 +187,28 @@ impl<'n> Planner<'n> {
 
     fn neighbourhood(
         &mut self,
-        statistic: Statistic,
+        (statistic, around): (Statistic, Around),
         operand: &Node,
+        span: &Span,
         draft: &mut Draft<'_>,
     ) -> Result<LayerUnit, LayerError> {
+        if around == Around::Cluster && self.names.cluster() < 2 {
+            return Err(LayerError::of_name(draft.text, span, &NameError::NoClusters));
+        }
         let mut inner = Draft::of(draft.text);
         let unit = self.node(operand, &mut inner)?;
         let source = self.column(inner.program);
         let known = self.steps.iter().position(|step| {
-            matches!(step, Step::Neighbourhood(other, of) if (*other, *of) == (statistic, source))
+            matches!(step, Step::Neighbourhood(other, at, of)
+                if (*other, *at, *of) == (statistic, around, source))
         });
         let step = known.unwrap_or_else(|| {
-            self.steps.push(Step::Neighbourhood(statistic, source));
+            self.steps.push(Step::Neighbourhood(statistic, around, source));
             self.steps.len() - 1
         });
         draft.uses(&inner.leaves);
-        draft.neighbours = true;
+        draft.neighbours |= inner.neighbours || around == Around::Nine;
+        draft.remarks.extend(inner.remarks);
         draft.add(Operation::Load(Source::Step(step)));
         Ok(match statistic {
             Statistic::StandardDeviation | Statistic::Range => unit.of_spread(),
@@ -204,6 +226,7 @@ impl<'n> Planner<'n> {
             Some(Ok(output)) => {
                 draft.uses(&output.leaves);
                 draft.neighbours |= output.neighbours;
+                draft.remarks.extend(output.remarks.iter().cloned());
                 draft.add(Operation::Load(output.source));
                 Ok(output.unit)
             }
@@ -299,7 +322,22 @@ impl<'n> Planner<'n> {
 
 impl<'t> Draft<'t> {
     fn of(text: &'t str) -> Self {
-        Self { text, program: Program::default(), leaves: Vec::new(), neighbours: false }
+        Self {
+            text,
+            program: Program::default(),
+            leaves: Vec::new(),
+            neighbours: false,
+            remarks: Vec::new(),
+        }
+    }
+
+    fn remark_on_mixed(&mut self, span: &Span, (one, other): (LayerUnit, LayerUnit)) {
+        if one.mixes_badly_with(other) {
+            let part = self.text.get(span.clone()).unwrap_or(self.text);
+            let (one, other) = (one.thing(), other.thing());
+            let part = clean_text(part);
+            self.remarks.push(format!("{part} puts {one} and {other} together"));
+        }
     }
 
     fn add(&mut self, operation: Operation) {

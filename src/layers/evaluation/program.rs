@@ -99,6 +99,12 @@ fn apply<'c>(
         Operation::Call(Function::Sqrt, _) => change(stack, f64::sqrt),
         Operation::Call(Function::Ln, _) => change(stack, f64::ln),
         Operation::Call(Function::Exp, _) => change(stack, f64::exp),
+        Operation::Call(Function::Missing, _) => {
+            // The only operation whose result is there where its operand is not.
+            for value in stack.last_mut().into_iter().flatten() {
+                *value = truth(value.is_nan());
+            }
+        }
         Operation::Planck(wavenumber) => change(stack, |temperature| {
             if temperature > 0.0 { planck(wavenumber, temperature) } else { f64::NAN }
         }),

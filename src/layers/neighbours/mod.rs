@@ -12,4 +12,4 @@ mod statistics;
 mod ground_tests;
 
 pub use lists::Neighbours;
-pub use statistics::neighbourhood;
+pub use statistics::{cluster, neighbourhood};

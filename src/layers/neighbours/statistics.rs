@@ -38,6 +38,19 @@ fn around(statistic: Statistic, values: &[f64], neighbours: &Neighbours, footpri
     if count < FEWEST { f64::NAN } else { of(statistic, &present[..count]) }
 }
 
+/// The statistic of `values` over each cluster of `size` footprints in a row. Missing where the
+/// footprint's own value is missing, and where half of the cluster or more is.
+pub fn cluster(statistic: Statistic, values: &[f64], size: usize) -> Vec<f64> {
+    let mut out = Vec::with_capacity(values.len());
+    for cluster in values.chunks(size.max(1)) {
+        let present: Vec<f64> = cluster.iter().copied().filter(|value| !value.is_nan()).collect();
+        let enough = present.len() >= 2 && 2 * present.len() > size;
+        let common = if enough { of(statistic, &present) } else { f64::NAN };
+        out.extend(cluster.iter().map(|own| if own.is_nan() { f64::NAN } else { common }));
+    }
+    out
+}
+
 fn of(statistic: Statistic, values: &[f64]) -> f64 {
     let least = || values.iter().copied().fold(f64::INFINITY, f64::min);
     let most = || values.iter().copied().fold(f64::NEG_INFINITY, f64::max);
@@ -96,6 +109,19 @@ mod tests {
     fn a_footprint_without_a_value_has_no_statistic() {
         let values = [1.0, 1.0, 1.0, 1.0, NAN, 1.0, 1.0, 1.0, 1.0];
         assert!(at_the_middle(Statistic::Mean, values).is_nan());
+    }
+
+    #[test]
+    fn clusters_stand_apart_and_need_more_than_half() {
+        // Worked by hand: 1, 3, 5, 7 have the mean 4 and squares of 9 + 1 + 1 + 9 = 20, of four.
+        let values = [1.0, 3.0, 5.0, 7.0, 9.0, NAN, 9.0, 12.0, NAN, NAN, 8.0, 8.0];
+        let spread = cluster(Statistic::StandardDeviation, &values, 4);
+        assert_eq!(spread[..4], [5.0_f64.sqrt(); 4]);
+        let range = cluster(Statistic::Range, &values, 4);
+        assert_eq!((range[3], range[4], range[7]), (6.0, 3.0, 3.0));
+        assert!(range[5].is_nan(), "no value of its own");
+        assert!(range[8..].iter().all(|value| value.is_nan()), "half of the cluster is missing");
+        assert!(cluster(Statistic::Range, &values, 1).iter().all(|value| value.is_nan()));
     }
 
     #[test]

@@ -15,7 +15,7 @@ use super::reading::{
     Input, LONGEST, Progress, Read, begins_word, count_operator, deeper, is_in_word, rest, spaced,
     spaces, symbol, unexpected, word, wrong,
 };
-use super::tree::{Infix, Kind, Node, Prefix, Span};
+use super::tree::{Infix, Judgement, Kind, Node, Prefix, Span};
 use super::vocabulary::{Arity, Callable, JOINING_WORDS, callable, example_of, functions};
 use crate::system::near_names;
 
@@ -161,6 +161,10 @@ fn named(input: &mut Input<'_>) -> Read<Node> {
     let open = peek(opt(literal("("))).parse_next(input)?.is_some();
     match (callable(name), open) {
         (Some(callable), true) => call(input, name, callable, span),
+        // The doubt about the whole footprint needs no words.
+        (Some(Callable::Judged(Judgement::Doubt)), false) => {
+            Ok(Node { span, kind: Kind::Judged(Judgement::Doubt, None) })
+        }
         (Some(_), false) => {
             let what = format!("{name} is a function");
             wrong(Mistake::new(span, what, format!("it to be used as in {}", example_of(name))))
@@ -185,9 +189,12 @@ fn call(input: &mut Input<'_>, name: &str, callable: Callable, head: Span) -> Re
             symbol(input, ',', "a comma and a wavenumber, as in planck(280, 900)")?;
             Kind::Planck(Box::new(temperature), place(input)?.0)
         }
-        Callable::Variable => Kind::Variable(quoted(input)?),
-        Callable::Neighbourhood(statistic) => {
-            Kind::Neighbourhood(statistic, Box::new(deeper(input, start, disjunction)?))
+        Callable::Variable => Kind::Variable(quoted(input, example_of(name))?),
+        Callable::Judged(judgement) => {
+            Kind::Judged(judgement, Some(quoted(input, example_of(name))?))
+        }
+        Callable::Neighbourhood(statistic, around) => {
+            Kind::Neighbourhood(statistic, around, Box::new(deeper(input, start, disjunction)?))
         }
         Callable::Function(function, arity) => {
             Kind::Call(function, operands(input, name, arity, head)?)

@@ -3,7 +3,9 @@
 use proptest::prelude::*;
 
 use super::place::Place;
-use super::tree::{Function, Infix, Kind, Node, Prefix, Quantity, Statistic, Where};
+use super::tree::{
+    Around, Function, Infix, Judgement, Kind, Node, Prefix, Quantity, Statistic, Where,
+};
 use super::{Expression, Mistake};
 use crate::units::SpectralUnit;
 
@@ -84,6 +86,10 @@ fn places_and_intervals_are_read_with_their_units() {
         ("bt(900cm-1..12um)", "bt(12um..900cm-1)"),
         ("planck(280, 11um)", "planck(280, 11um)"),
         ("sd3(bt(900))", "sd3(bt(900))"),
+        ("range_cluster( bt(900) )", "range_cluster(bt(900))"),
+        ("doubt>0.5", "doubt > 0.5"),
+        ("doubt( \"cloudy\" )", "doubt(\"cloudy\")"),
+        ("margin(\"T01 gross window\") < 0", "margin(\"T01 gross window\") < 0"),
         ("var(\"/q c/a\\\"b\\\\\")", "var(\"/q c/a\\\"b\\\\\")"),
         ("min(a,b , 3)", "min(a, b, 3)"),
     ] {
@@ -129,6 +135,8 @@ fn messages_point_at_the_place() {
         ("1 < lat < 3", "<"),
         ("sdd3(bt(900))", "sdd3"),
         ("bt + 1", "bt"),
+        ("flag", "flag"),
+        ("margin(T01)", "T01"),
         ("min(1)", "min"),
         ("abs(1, 2)", "abs"),
         ("lat lon", "lon"),
@@ -149,7 +157,7 @@ fn messages_point_at_the_place() {
 #[test]
 fn near_functions_are_offered() {
     assert_eq!(mistake("sdd3(bt(900))").near[0], "sd3");
-    assert_eq!(mistake("log(3)").near, Vec::<String>::new());
+    assert_eq!(mistake("arctan(3)").near, Vec::<String>::new());
     assert_eq!(mistake("Bt(900)").near[0], "bt");
 }
 
@@ -192,6 +200,8 @@ fn trees() -> impl Strategy<Value = Node> {
             .prop_filter("a name", |name| super::vocabulary::callable(name).is_none())
             .prop_map(Kind::Name),
         "[ -~]{1,12}".prop_map(Kind::Variable),
+        "[ -~]{1,12}".prop_map(|name| Kind::Judged(Judgement::Margin, Some(name))),
+        Just(Kind::Judged(Judgement::Doubt, None)),
         (quantity, prop_oneof![place.prop_map(Where::At), interval])
             .prop_map(|(quantity, place)| Kind::Spectral(quantity, place)),
     ]
@@ -203,7 +213,9 @@ fn trees() -> impl Strategy<Value = Node> {
                 .prop_map(|(infix, left, right)| Kind::Infix(infix, left, right)),
             boxed.clone().prop_map(|operand| Kind::Prefix(Prefix::Negate, operand)),
             boxed.clone().prop_map(|operand| Kind::Prefix(Prefix::Not, operand)),
-            boxed.clone().prop_map(|operand| Kind::Neighbourhood(Statistic::Range, operand)),
+            (prop_oneof![Just(Around::Nine), Just(Around::Cluster)], boxed.clone()).prop_map(
+                |(around, operand)| Kind::Neighbourhood(Statistic::Range, around, operand)
+            ),
             inner.clone().prop_map(|operand| Kind::Call(Function::Sqrt, vec![operand])),
             prop::collection::vec(inner, 2..4).prop_map(|all| Kind::Call(Function::Max, all)),
             (boxed, 1.0f64..3000.0).prop_map(|(operand, value)| Kind::Planck(

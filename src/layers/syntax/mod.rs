@@ -15,5 +15,7 @@ mod grammar_tests;
 
 pub use expression::{Expression, ExpressionError};
 pub use mistake::Mistake;
-pub use tree::{Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where};
+pub use tree::{
+    Around, Function, Infix, Judgement, Kind, Node, Prefix, Quantity, Span, Statistic, Where,
+};
 pub use vocabulary::{DERIVED_NAMES, FRIENDLY_NAMES, FriendlyName, functions};

@@ -124,11 +124,11 @@ fn number_length(text: &str) -> usize {
     length
 }
 
-/// A name in quotes; a backslash takes the meaning from a quote or a backslash.
-pub fn quoted(input: &mut Input<'_>) -> Read<String> {
+/// A name in quotes, as in `example`; a backslash takes the meaning from a quote or a backslash.
+pub fn quoted(input: &mut Input<'_>, example: &str) -> Read<String> {
     let start = input.current_token_start();
     if opt('"').parse_next(input)?.is_none() {
-        return unexpected(input, "the variable's name in quotes, as in var(\"quality\")");
+        return unexpected(input, format!("a name in quotes, as in {example}"));
     }
     let mut name = String::new();
     loop {
@@ -149,7 +149,7 @@ pub fn quoted(input: &mut Input<'_>) -> Read<String> {
     spaces(input)?;
     if name.is_empty() {
         let end = input.state.token_end;
-        return wrong(Mistake::new(start..end, "the name is empty", "a variable's name"));
+        return wrong(Mistake::new(start..end, "the name is empty", "a name in quotes"));
     }
     Ok(name)
 }

@@ -31,6 +31,10 @@ impl fmt::Display for Node {
             Kind::Planck(temperature, place) => {
                 write!(out, "planck({temperature}, {place})")
             }
+            Kind::Judged(judgement, of) => {
+                out.write_str(name_of(Callable::Judged(*judgement)))?;
+                of.as_ref().map_or(Ok(()), |of| write!(out, "({})", quoted(of)))
+            }
             Kind::Prefix(prefix, operand) => write_prefix(*prefix, operand, out),
             Kind::Infix(infix, left, right) => write_infix(*infix, left, right, out),
             Kind::Call(function, operands) => {
@@ -41,8 +45,8 @@ impl fmt::Display for Node {
                 }
                 out.write_str(")")
             }
-            Kind::Neighbourhood(statistic, operand) => {
-                write!(out, "{}({operand})", name_of(Callable::Neighbourhood(*statistic)))
+            Kind::Neighbourhood(statistic, around, operand) => {
+                write!(out, "{}({operand})", name_of(Callable::Neighbourhood(*statistic, *around)))
             }
         }
     }

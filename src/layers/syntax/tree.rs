@@ -23,13 +23,17 @@ impl Node {
         match &self.kind {
             Kind::Planck(operand, _)
             | Kind::Prefix(_, operand)
-            | Kind::Neighbourhood(_, operand) => operand.visit(look),
+            | Kind::Neighbourhood(_, _, operand) => operand.visit(look),
             Kind::Infix(_, left, right) => {
                 left.visit(look);
                 right.visit(look);
             }
             Kind::Call(_, operands) => operands.iter().for_each(|operand| operand.visit(look)),
-            Kind::Number(_) | Kind::Name(_) | Kind::Variable(_) | Kind::Spectral(..) => {}
+            Kind::Number(_)
+            | Kind::Name(_)
+            | Kind::Variable(_)
+            | Kind::Judged(..)
+            | Kind::Spectral(..) => {}
         }
     }
 }
@@ -50,6 +54,8 @@ pub enum Kind {
     Name(String),
     /// `var("name in the file")`.
     Variable(String),
+    /// `doubt`, `doubt("cloudy")`, `margin("T01 gross window")`, …: what screening tests say.
+    Judged(Judgement, Option<String>),
     /// `bt(…)` or `rad(…)`.
     Spectral(Quantity, Where),
     /// `planck(T, nu)`: the radiance of a black body.
@@ -60,8 +66,8 @@ pub enum Kind {
     Infix(Infix, Box<Node>, Box<Node>),
     /// `min(a, b)`, `sqrt(a)`, …
     Call(Function, Vec<Node>),
-    /// `sd3(a)`, …: over the neighbourhood on the ground.
-    Neighbourhood(Statistic, Box<Node>),
+    /// `sd3(a)`, `sd_cluster(a)`, …: over the footprints around each.
+    Neighbourhood(Statistic, Around, Box<Node>),
 }
 
 /// What is asked of a channel or an interval.
@@ -113,6 +119,12 @@ pub enum Infix {
 }
 
 impl Infix {
+    /// Whether both sides ought to be measured in the same unit.
+    pub fn wants_one_unit(self) -> bool {
+        let free = [Self::Or, Self::And, Self::Multiply, Self::Divide, Self::Power];
+        !free.contains(&self)
+    }
+
     /// How it is written.
     pub fn symbol(self) -> &'static str {
         match self {
@@ -148,9 +160,45 @@ pub enum Function {
     Ln,
     /// Exponential.
     Exp,
+    /// 1 where the value is missing, 0 where it is there.
+    Missing,
 }
 
-/// Statistics of the neighbourhood on the ground.
+/// What is asked of screening tests.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord)]
+pub enum Judgement {
+    /// How doubtful a footprint, or a flag there, is: 0 plain, 1 a coin toss or hardly tested.
+    Doubt,
+    /// How probable a flag is, 0 to 1.
+    Probability,
+    /// Whether a flag is set.
+    Flag,
+    /// By how much a test speaks for its flag, in units of its softness.
+    Margin,
+}
+
+impl Judgement {
+    /// In a word.
+    pub fn word(self) -> &'static str {
+        match self {
+            Self::Doubt => "doubt",
+            Self::Probability => "probability",
+            Self::Flag => "a flag",
+            Self::Margin => "a margin",
+        }
+    }
+}
+
+/// Which footprints a statistic is over.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum Around {
+    /// The neighbourhood on the ground, nine at the most.
+    Nine,
+    /// The detectors at the same scan line and position.
+    Cluster,
+}
+
+/// Statistics of the footprints around one.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
 pub enum Statistic {
     /// Population standard deviation.

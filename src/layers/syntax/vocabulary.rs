@@ -1,6 +1,6 @@
 //! The words of the language, one table each.
 
-use super::tree::{Function, Quantity, Statistic};
+use super::tree::{Around, Function, Judgement, Quantity, Statistic};
 use crate::layers::unit::LayerUnit;
 
 /// A field of the geolocation that every granule may have, under the same name in every file.
@@ -73,6 +73,11 @@ pub const DERIVED_NAMES: &[FriendlyName] = &[
         unit: LayerUnit::One,
         meaning: "days since the year began, 0 to 366, UTC",
     },
+    FriendlyName {
+        name: "season",
+        unit: LayerUnit::One,
+        meaning: "-1 in the depth of winter, 1 in the height of summer of the footprint's hemisphere",
+    },
 ];
 
 /// What a name followed by a parenthesis stands for.
@@ -86,8 +91,10 @@ pub enum Callable {
     Variable,
     /// Functions of numbers, and how many they take.
     Function(Function, Arity),
-    /// Statistics of the neighbourhood.
-    Neighbourhood(Statistic),
+    /// Statistics of the footprints around one.
+    Neighbourhood(Statistic, Around),
+    /// What screening tests say.
+    Judged(Judgement),
 }
 
 /// How many operands a function takes.
@@ -112,11 +119,26 @@ const CALLABLE: &[(&str, Callable, &str)] = &[
     ("sqrt", Callable::Function(Function::Sqrt, Arity::One), "sqrt(a)"),
     ("ln", Callable::Function(Function::Ln, Arity::One), "ln(a)"),
     ("exp", Callable::Function(Function::Exp, Arity::One), "exp(a)"),
-    ("sd3", Callable::Neighbourhood(Statistic::StandardDeviation), "sd3(bt(900))"),
-    ("mean3", Callable::Neighbourhood(Statistic::Mean), "mean3(bt(900))"),
-    ("min3", Callable::Neighbourhood(Statistic::Minimum), "min3(bt(900))"),
-    ("max3", Callable::Neighbourhood(Statistic::Maximum), "max3(bt(900))"),
-    ("range3", Callable::Neighbourhood(Statistic::Range), "range3(bt(900))"),
+    ("missing", Callable::Function(Function::Missing, Arity::One), "missing(lat)"),
+    ("sd3", Callable::Neighbourhood(Statistic::StandardDeviation, Around::Nine), "sd3(bt(900))"),
+    ("mean3", Callable::Neighbourhood(Statistic::Mean, Around::Nine), "mean3(bt(900))"),
+    ("min3", Callable::Neighbourhood(Statistic::Minimum, Around::Nine), "min3(bt(900))"),
+    ("max3", Callable::Neighbourhood(Statistic::Maximum, Around::Nine), "max3(bt(900))"),
+    ("range3", Callable::Neighbourhood(Statistic::Range, Around::Nine), "range3(bt(900))"),
+    (
+        "sd_cluster",
+        Callable::Neighbourhood(Statistic::StandardDeviation, Around::Cluster),
+        "sd_cluster(bt(900))",
+    ),
+    (
+        "range_cluster",
+        Callable::Neighbourhood(Statistic::Range, Around::Cluster),
+        "range_cluster(bt(900))",
+    ),
+    ("doubt", Callable::Judged(Judgement::Doubt), "doubt(\"cloudy\")"),
+    ("probability", Callable::Judged(Judgement::Probability), "probability(\"cloudy\")"),
+    ("flag", Callable::Judged(Judgement::Flag), "flag(\"cloudy\")"),
+    ("margin", Callable::Judged(Judgement::Margin), "margin(\"T01 gross window\")"),
 ];
 
 /// Words that join and can't be names.
