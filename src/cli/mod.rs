@@ -14,6 +14,8 @@ mod footprint_at;
 mod inputs;
 mod manual;
 mod natural_order;
+#[cfg(feature = "terminal")]
+mod own_settings;
 mod planck;
 mod reader;
 mod review;

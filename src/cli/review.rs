@@ -51,7 +51,7 @@ mod on_screen {
 
     use super::Arguments;
     use crate::cli::exit::{Exit, UsageError};
-    use crate::cli::surroundings;
+    use crate::cli::{own_settings, surroundings};
     use crate::flags::Campaign;
     use crate::layers::Expression;
     use crate::tray::Tray;
@@ -82,6 +82,7 @@ mod on_screen {
             program: env!("CARGO_PKG_VERSION").to_owned(),
             // The form of RADSIEVE_NOW was checked above.
             clock: Arc::new(|| surroundings::now().unwrap_or_else(|_| jiff::Timestamp::now())),
+            keys: own_settings::keys()?,
             first_layer: arguments.layer,
         };
         let mut app = App::new(outside, theme, Tray::new(files));

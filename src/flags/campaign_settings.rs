@@ -3,7 +3,7 @@
 use std::io::Write;
 use std::path::Path;
 
-use super::{CampaignError, FlagExtension, Vocabulary};
+use super::{CampaignError, FlagExtension, KeySetting, Vocabulary};
 
 /// The settings file's name in the campaign folder.
 pub const SETTINGS_FILE: &str = "campaign.toml";
@@ -28,6 +28,11 @@ format = 1
 # key = "l"                   # the letter that chooses it
 # meaning = "sunlight mirrored by the sea raises the short-wave channels"
 # excludes = false            # true: keeps the footprint from the retrieval
+
+# Keys of the review, by the names of docs/keys.md. A person's own settings come after these.
+# [keys]
+# undo = "U"
+# redo = ["Ctrl-Y", "F5"]
 "#;
 
 /// The settings of a campaign.
@@ -37,13 +42,20 @@ pub struct CampaignSettings {
     pub title: Option<String>,
     /// The released flags and the campaign's own.
     pub vocabulary: Vocabulary,
+    /// Keys of this campaign's own.
+    pub keys: Vec<KeySetting>,
     /// Settings that this version does not know, in words.
     pub problems: Vec<String>,
 }
 
 impl Default for CampaignSettings {
     fn default() -> Self {
-        Self { title: None, vocabulary: Vocabulary::released(), problems: Vec::new() }
+        Self {
+            title: None,
+            vocabulary: Vocabulary::released(),
+            keys: Vec::new(),
+            problems: Vec::new(),
+        }
     }
 }
 
@@ -77,9 +89,10 @@ impl CampaignSettings {
         }
         let vocabulary =
             Vocabulary::with_extensions(&typed.flag).map_err(|error| error.to_string())?;
-        let problems =
-            typed.unknown.keys().map(|key| format!("unknown setting `{key}` in {SETTINGS_FILE}"));
-        Ok(Self { title: typed.title, vocabulary, problems: problems.collect() })
+        let keys = KeySetting::parse(text, SETTINGS_FILE)?;
+        let unknown = typed.unknown.keys().filter(|key| *key != "keys");
+        let problems = unknown.map(|key| format!("unknown setting `{key}` in {SETTINGS_FILE}"));
+        Ok(Self { title: typed.title, vocabulary, keys, problems: problems.collect() })
     }
 
     /// Reads the settings of a campaign folder; a folder without the file has the defaults.
@@ -138,6 +151,7 @@ mod tests {
         let settings = CampaignSettings::parse(&example).unwrap();
         assert_eq!(settings.vocabulary.by_name("sun_glint").unwrap().bit, 16);
         assert_eq!(settings.title.as_deref(), Some("Sea of Lowen, first look"));
+        assert_eq!(settings.keys.len(), 2);
     }
 
     #[test]

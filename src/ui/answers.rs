@@ -13,6 +13,7 @@ use super::bench::{Bench, Quality, RecordState};
 use super::colour::Tone;
 use super::deciding;
 use super::jobs::{Answer, Job};
+use super::keys::Action;
 use super::looking;
 use super::panes::Arrangement;
 use super::place::Place;
@@ -80,8 +81,15 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     match problems {
         // Why files before this one were passed over has to stay to be read.
         _ if app.message.1 == Tone::Bad => {}
+        _ if !app.keymap.problems().is_empty() => {
+            let problem = app.keymap.problems().join("; ");
+            app.warn(problem);
+        }
         0 => app.say(""),
-        count => app.say(format!("{count} found missing, guessed or odd: ! shows")),
+        count => {
+            let key = app.keymap.hint(Action::Problems);
+            app.say(format!("{count} found missing, guessed or odd: {key} shows"));
+        }
     }
     jobs.extend(looking::spectrum(app));
     jobs.extend(looking::refresh_layer(app));

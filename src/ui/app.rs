@@ -6,7 +6,7 @@ use std::sync::Arc;
 use jiff::Timestamp;
 use ratatui::layout::{Rect, Size};
 
-use crate::flags::{Author, Campaign};
+use crate::flags::{Author, Campaign, KeySetting};
 use crate::granule::Opening;
 use crate::review::Record;
 use crate::tray::Tray;
@@ -14,6 +14,7 @@ use crate::tray::Tray;
 use super::bench::{Bench, RecordState};
 use super::colour::{Theme, Tone};
 use super::event::Ending;
+use super::keymap::Keymap;
 use super::line::History;
 use super::overlay::Overlay;
 use super::panes::{Arrangement, Pane, ScreenLayout};
@@ -31,6 +32,8 @@ pub struct Outside {
     pub program: String,
     /// The wall clock.
     pub clock: Arc<dyn Fn() -> Timestamp + Send + Sync>,
+    /// Keys of the person's own.
+    pub keys: Vec<KeySetting>,
     /// The layer to begin with instead of the suggested one.
     pub first_layer: Option<String>,
 }
@@ -69,6 +72,8 @@ pub struct App {
     pub outside: Arc<Outside>,
     /// How the screen looks.
     pub theme: Theme,
+    /// Which key does what.
+    pub keymap: Keymap,
     /// The granules in hand.
     pub tray: Tray,
     /// The row of the Tray under its own cursor.
@@ -115,8 +120,11 @@ pub struct App {
 impl App {
     /// The state before anything was opened.
     pub fn new(outside: Outside, theme: Theme, tray: Tray) -> App {
+        let keymap =
+            Keymap::with(outside.campaign.settings().keys.iter().chain(outside.keys.iter()));
         App {
             outside: Arc::new(outside),
+            keymap,
             theme,
             tray,
             tray_cursor: 0,

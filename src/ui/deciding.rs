@@ -12,7 +12,7 @@ use crate::tray::Standing;
 use super::app::App;
 use super::bench::RecordState;
 use super::jobs::Job;
-use super::keys::{Action, hint_key};
+use super::keys::Action;
 use super::looking::no_granule;
 use super::overlay::{FlagOrder, FlagPrompt, Overlay, Selection};
 
@@ -169,7 +169,7 @@ fn ask_sign_off(app: &mut App) -> Vec<Job> {
 
 /// Signs off, the rest counting as looked at or not.
 pub fn sign_off(app: &mut App, rest_looked_at: bool) -> Vec<Job> {
-    let next = hint_key(Action::NextUnsigned);
+    let next = app.keymap.hint(Action::NextUnsigned);
     change(app, move |record, now| {
         record.sign_off(rest_looked_at, now)?;
         Ok(format!("signed off; {next}: next granule"))

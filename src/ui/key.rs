@@ -70,10 +70,59 @@ impl Key {
         Key { code: Code::Char(character), control: true, alt: false, shift: false }
     }
 
+    /// The key of a name as the help writes it: `x`, `Ctrl-R`, `F5`, `PageUp`.
+    pub fn named(name: &str) -> Option<Key> {
+        let mut key = Key::plain(Code::Esc);
+        let mut rest = name;
+        if rest == "Shift-Tab" {
+            return Some(Key::plain(Code::BackTab));
+        }
+        for (modifier, held) in
+            [("Ctrl-", &mut key.control), ("Alt-", &mut key.alt), ("Shift-", &mut key.shift)]
+        {
+            if let Some(short) = rest.strip_prefix(modifier).filter(|short| !short.is_empty()) {
+                (rest, *held) = (short, true);
+            }
+        }
+        let mut letters = rest.chars();
+        key.code = match (letters.next(), letters.next()) {
+            // Terminals send Control with capitals and small letters alike; Shift makes a capital.
+            (Some(letter), None) if key.control => Code::Char(letter.to_ascii_lowercase()),
+            (Some(letter), None) if !key.shift && letter != ' ' => Code::Char(letter),
+            (Some(_), None) => return None,
+            _ => named_code(rest)?,
+        };
+        Some(key)
+    }
+
     /// A key with Shift.
     pub const fn shifted(code: Code) -> Key {
         Key { code, control: false, alt: false, shift: true }
     }
+}
+
+fn named_code(name: &str) -> Option<Code> {
+    if let Some(number) = name.strip_prefix('F').and_then(|number| number.parse().ok()) {
+        return (1..=12).contains(&number).then_some(Code::Function(number));
+    }
+    const NAMED: [Code; 15] = [
+        Code::Char(' '),
+        Code::Enter,
+        Code::Esc,
+        Code::Tab,
+        Code::Backspace,
+        Code::Delete,
+        Code::Insert,
+        Code::Up,
+        Code::Down,
+        Code::Left,
+        Code::Right,
+        Code::Home,
+        Code::End,
+        Code::PageUp,
+        Code::PageDown,
+    ];
+    NAMED.into_iter().find(|code| Key::plain(*code).to_string() == name)
 }
 
 impl fmt::Display for Key {
@@ -108,5 +157,23 @@ impl fmt::Display for Key {
             Code::PageUp => f.write_str("PageUp"),
             Code::PageDown => f.write_str("PageDown"),
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn names_are_read_as_they_are_written() {
+        for name in
+            ["x", "X", ":", "-", "Ctrl-R", "Alt-x", "F5", "Shift-Tab", "Shift-Left", "Space"]
+        {
+            assert_eq!(Key::named(name).unwrap().to_string(), name);
+        }
+        for name in ["", "Ctrl-", "F13", "Hyper-X", "Shift-x", "xy"] {
+            assert_eq!(Key::named(name), None, "{name}");
+        }
+        assert_eq!(Key::named("Ctrl-r"), Some(Key::control('r')));
     }
 }

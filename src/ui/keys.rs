@@ -79,6 +79,8 @@ pub enum Group {
     Layers,
     /// The spectrum.
     Spectrum,
+    /// The layer along lines, detectors or granules.
+    Series,
     /// Flags and other decisions.
     Deciding,
     /// The program itself.
@@ -87,8 +89,24 @@ pub enum Group {
 
 impl Group {
     /// All headings, in the order of the help.
-    pub const ALL: [Group; 5] =
-        [Group::Moving, Group::Layers, Group::Spectrum, Group::Deciding, Group::Program];
+    pub const ALL: [Group; 6] = [
+        Group::Moving,
+        Group::Layers,
+        Group::Spectrum,
+        Group::Series,
+        Group::Deciding,
+        Group::Program,
+    ];
+
+    /// The pane that the group is about, if it is about one.
+    pub fn pane(self) -> Option<Pane> {
+        match self {
+            Group::Layers => Some(Pane::Field),
+            Group::Spectrum => Some(Pane::Trace),
+            Group::Series => Some(Pane::Strip),
+            Group::Moving | Group::Deciding | Group::Program => None,
+        }
+    }
 
     /// The heading.
     pub fn title(self) -> &'static str {
@@ -96,6 +114,7 @@ impl Group {
             Group::Moving => "Moving",
             Group::Layers => "Field: layers",
             Group::Spectrum => "Trace: spectra",
+            Group::Series => "Strip: drifts and stripes",
             Group::Deciding => "Deciding",
             Group::Program => "Program",
         }
@@ -135,7 +154,7 @@ const fn letter(letter: char) -> Key {
     Key::char(letter)
 }
 
-use Group::{Deciding, Layers, Moving, Program, Spectrum};
+use Group::{Deciding, Layers, Moving, Program, Series, Spectrum};
 
 /// Every key, in the order of the help.
 pub const BINDINGS: &[Binding] = &[
@@ -160,13 +179,6 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('%')], Action::CycleRange, "cycle-range", Layers, "colour range by percentiles"),
     row(&[letter('i')], Action::FieldIn, "field-in", Layers, "zoom the map in"),
     row(&[letter('o')], Action::FieldOut, "field-out", Layers, "zoom the map out"),
-    row(
-        &[letter('s')],
-        Action::StripAlong,
-        "strip-along",
-        Layers,
-        "Strip: along lines, positions…",
-    ),
     row(&[letter('.')], Action::ChannelUp, "channel-up", Spectrum, "next channel in hand"),
     row(&[letter(',')], Action::ChannelDown, "channel-down", Spectrum, "previous channel"),
     row(&[letter('>')], Action::ChannelFarUp, "channel-far-up", Spectrum, "20 channels up"),
@@ -186,6 +198,7 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('0')], Action::WholeSpectrum, "whole", Spectrum, "the whole spectrum"),
     row(&[letter('x')], Action::Pin, "pin", Spectrum, "pin the footprint to compare"),
     row(&[letter('X')], Action::Unpin, "unpin", Spectrum, "take all pins off"),
+    row(&[letter('s')], Action::StripAlong, "strip-along", Series, "along lines, positions, …"),
     row(&[letter('f')], Action::Flag, "choose-flag", Deciding, "flag the footprint or the box"),
     row(&[letter('F')], Action::FlagAgain, "flag-again", Deciding, "the same flag once more"),
     row(&[letter('w')], Action::Withdraw, "choose-withdraw", Deciding, "withdraw a flag"),
@@ -218,25 +231,19 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('q'), Key::control('c')], Action::Quit, "quit", Program, "leave"),
 ];
 
-/// What a key does while no prompt is open.
-pub fn action_of(key: Key) -> Option<Action> {
-    BINDINGS.iter().find(|binding| binding.keys.contains(&key)).map(|binding| binding.action)
-}
-
 /// The action of a command name.
 pub fn action_named(name: &str) -> Option<Action> {
     BINDINGS.iter().find(|binding| binding.name == name).map(|binding| binding.action)
 }
 
-/// The keys of one row as the help writes them.
-pub fn keys_text(binding: &Binding) -> String {
-    binding.keys.iter().map(Key::to_string).collect::<Vec<_>>().join(" ")
+/// The name of an action on the command line.
+pub fn name_of(action: Action) -> &'static str {
+    BINDINGS.iter().find(|binding| binding.action == action).map_or("", |binding| binding.name)
 }
 
-/// The first key of an action as the hints write it.
-pub fn hint_key(action: Action) -> String {
-    let binding = BINDINGS.iter().find(|binding| binding.action == action);
-    binding.and_then(|binding| binding.keys.first()).map(Key::to_string).unwrap_or_default()
+/// The table's own keys of one row as documents write them.
+pub fn keys_text(binding: &Binding) -> String {
+    binding.keys.iter().map(Key::to_string).collect::<Vec<_>>().join(" ")
 }
 
 #[cfg(test)]
@@ -262,6 +269,8 @@ mod tests {
 
     #[test]
     fn the_contract_keys_stand() {
+        let keymap = crate::ui::keymap::Keymap::default();
+        let action_of = |key| keymap.action_of(key);
         assert_eq!(action_of(Key::char('q')), Some(Action::Quit));
         assert_eq!(action_of(Key::char('?')), Some(Action::Help));
         assert_eq!(action_of(Key::char(':')), Some(Action::Command));

@@ -13,6 +13,21 @@ is open, its own line says which keys it takes; Esc leaves it.
 
 In the Tray the up and down keys choose a granule and Enter opens it. In every other pane the arrows
 move the cursor over the footprints.
+
+Keys are changed by the names in the second column, in the table `[keys]` of the campaign's
+`campaign.toml` or of one's own `radsieve/settings.toml` under `XDG_CONFIG_HOME` (else `~/.config`),
+which comes after the campaign's:
+
+```toml
+[keys]
+undo = \"U\"
+redo = [\"Ctrl-Y\", \"F5\"]
+```
+
+A key given to one action is taken from the one that has it by this table; two settings for one key
+clash, and the first holds. What is wrong is named with its line when a granule opens, and by `!`.
+The keys of `quit`, `help`, `command` and `cancel` stay theirs. The help and the hints show the keys in
+force.
 ";
 
 const COMMANDS: &str = "

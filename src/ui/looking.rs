@@ -157,7 +157,8 @@ pub fn pins(app: &mut App, action: Action) -> Vec<Job> {
         return Vec::new();
     }
     if !bench.pin(bench.cursor) {
-        app.warn(format!("{MOST_PINS} are pinned already; X takes all pins off"));
+        let key = app.keymap.hint(Action::Unpin);
+        app.warn(format!("{MOST_PINS} are pinned already; {key} takes all pins off"));
     }
     fill_pins(app);
     Vec::new()

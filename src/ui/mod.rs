@@ -26,6 +26,7 @@ mod keyboard;
 mod key_tests;
 #[cfg(test)]
 mod lost_file_tests;
+pub mod keymap;
 pub mod keys;
 #[cfg(test)]
 mod keys_document;

@@ -38,7 +38,7 @@ pub fn press(app: &mut App, key: Key) -> Vec<Job> {
     match std::mem::take(&mut app.overlay) {
         Overlay::None => Vec::new(),
         Overlay::Help(scroll) => {
-            let lines = views::help_groups().iter().map(|group| group.rows.len() + 2).sum();
+            let lines = views::help_groups(app).iter().map(|group| group.rows.len() + 2).sum();
             scrolled(app, key, scroll, lines, Overlay::Help)
         }
         Overlay::Problems(scroll) => {

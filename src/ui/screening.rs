@@ -8,7 +8,7 @@ use crate::system::Cancel;
 use super::app::App;
 use super::colour::Tone;
 use super::jobs::Job;
-use super::keys::{Action, hint_key};
+use super::keys::Action;
 use super::looking;
 
 /// Runs the tests over the granule on the table; the newest request wins.
@@ -54,6 +54,6 @@ pub fn give_up(app: &mut App) -> bool {
     };
     bench.awaited.screen = 0;
     bench.tests.cancel.cancel();
-    app.say(format!("the tests were given up; {} runs them", hint_key(Action::RunTests)));
+    app.say(format!("the tests were given up; {} runs them", app.keymap.hint(Action::RunTests)));
     true
 }

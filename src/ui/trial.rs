@@ -14,8 +14,7 @@ use super::bench::Bench;
 use super::colour::{Background, ColourDepth, Theme};
 use super::event::{Event, Input};
 use super::jobs::{Answer, Job};
-use super::key::{Code, Key};
-use super::keys::BINDINGS;
+use super::key::Key;
 use super::{draw, turning, update, work};
 use crate::flags::{Author, Campaign};
 use crate::granule::Opening;
@@ -111,6 +110,7 @@ impl Place {
             author: Author { person: person.into(), host: "desk".into(), process: 7 },
             program: "0.0.0".to_owned(),
             clock: Arc::new(|| "2026-03-01T12:00:00Z".parse().unwrap()),
+            keys: Vec::new(),
             first_layer: None,
         };
         let theme = Theme { depth: ColourDepth::None, ascii: true, background: Background::Dark };
@@ -241,17 +241,7 @@ impl Trial {
     }
 }
 
-/// The key of a name as the help writes it; any single character is a key too.
+/// The key of a name as the help writes it.
 fn key_named(name: &str) -> Key {
-    let known =
-        BINDINGS.iter().flat_map(|binding| binding.keys).find(|key| key.to_string() == name);
-    match (known, name) {
-        (Some(key), _) => *key,
-        (None, "Backspace") => Key::plain(Code::Backspace),
-        (None, "Tab") => Key::plain(Code::Tab),
-        (None, name) => match name.strip_prefix("Ctrl-") {
-            Some(letter) => Key::control(letter.chars().next().unwrap().to_ascii_lowercase()),
-            None => Key::char(name.chars().next().unwrap()),
-        },
-    }
+    Key::named(name).unwrap_or_else(|| panic!("{name} is no key"))
 }

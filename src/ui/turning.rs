@@ -4,7 +4,7 @@ use super::app::{App, Direction, Table};
 use super::bench::RecordState;
 use super::colour::Tone;
 use super::jobs::Job;
-use super::keys::{Action, hint_key};
+use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 
@@ -46,14 +46,10 @@ pub fn open_first(app: &mut App) -> Vec<Job> {
 }
 
 fn none_is_left(app: &mut App) -> Vec<Job> {
-    let why = problems_key();
+    let why = app.keymap.hint(Action::Problems);
     app.message = (format!("none of the files can be used; {why} says why"), Tone::Bad);
     app.panes.focus_on(Pane::Tray);
     Vec::new()
-}
-
-fn problems_key() -> String {
-    hint_key(Action::Problems)
 }
 
 /// Next, previous, next not signed off, or the one under the Tray's cursor.
@@ -146,7 +142,10 @@ pub fn could_not_open(app: &mut App, entry: usize, direction: Direction, why: St
     let bad = app.tray.entries().iter().filter(|entry| entry.error.is_some()).count();
     let why = match bad {
         1 => format!("{name}: {why}"),
-        _ => format!("{bad} files cannot be used ({} says why), {name}: {why}", problems_key()),
+        _ => format!(
+            "{bad} files cannot be used ({} says why), {name}: {why}",
+            app.keymap.hint(Action::Problems)
+        ),
     };
     app.message = (why, Tone::Bad);
     jobs

@@ -4,7 +4,7 @@ use super::app::{App, Table};
 use super::event::{Event, Input, Mouse};
 use super::jobs::Job;
 use super::key::{Code, Key};
-use super::keys::{self, Action};
+use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{answers, deciding, looking, moving, prompts, screening, turning, typing};
@@ -38,7 +38,7 @@ fn press(app: &mut App, key: Key) -> Vec<Job> {
     if let Some(bench) = app.bench_mut() {
         bench.touched = true;
     }
-    let action = keys::action_of(key);
+    let action = app.keymap.action_of(key);
     // Stopping and drawing anew work whatever lies over the panes.
     let always = matches!(action, Some(Action::Suspend | Action::Redraw));
     if !always && !matches!(app.overlay, Overlay::None) {
@@ -47,7 +47,7 @@ fn press(app: &mut App, key: Key) -> Vec<Job> {
     match action {
         Some(action) => act(app, action),
         None => {
-            app.say(format!("no key {key}; ? shows the keys"));
+            app.say(format!("no key {key}; {} shows the keys", app.keymap.hint(Action::Help)));
             Vec::new()
         }
     }
@@ -96,11 +96,14 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         }
         A::Mouse => {
             app.mouse = !app.mouse;
-            app.say(if app.mouse {
-                "the mouse moves the cursor; m gives it back to the terminal"
-            } else {
-                "the mouse is the terminal's"
-            });
+            let words = match app.mouse {
+                true => {
+                    let key = app.keymap.hint(Action::Mouse);
+                    format!("the mouse moves the cursor; {key} gives it back to the terminal")
+                }
+                false => "the mouse is the terminal's".to_owned(),
+            };
+            app.say(words);
             Vec::new()
         }
         A::Redraw => {

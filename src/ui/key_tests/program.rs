@@ -55,3 +55,36 @@ fn any_keys_in_any_order() {
     }
     assert!(trial.app.ended.is_none() || trial.app.pending() == 0);
 }
+
+#[test]
+fn settings_change_the_keys_everywhere() {
+    let place = Place::with(&["lowen_001.nc"]);
+    std::fs::create_dir_all(place.path("campaign")).unwrap();
+    let settings = "[keys]\nbox = 'V'\nundo = 'V'\nassess = 'F9'\n";
+    std::fs::write(place.path("campaign/campaign.toml"), settings).unwrap();
+    let mut trial = place.review(&["lowen_001.nc"]);
+    assert_eq!(
+        trial.message(),
+        "campaign.toml, line 3: V is box already (campaign.toml, line 2); undo does not get it"
+    );
+    trial.keys("V Down F9");
+    assert_eq!(trial.record().counts().not_assessed, 28);
+    trial.keys("u");
+    assert_eq!(trial.record().counts().not_assessed, 30, "the key that clashed stays as it was");
+    trial.keys("v");
+    assert_eq!(trial.message(), "no key v; ? shows the keys");
+    assert!(trial.screen(80, 24).contains("V box"), "the hints");
+    trial.keys("?");
+    assert!(trial.screen(80, 90).contains("F9"), "the help");
+}
+
+#[test]
+fn the_help_begins_with_the_pane_in_focus() {
+    let (_place, mut trial) = one_granule();
+    for (keys, title) in [("?", "Field: layers"), ("3 ?", "Trace: spectra"), ("5 ?", "Strip:")] {
+        trial.keys(keys);
+        let screen = trial.screen(80, 24);
+        assert!(screen.lines().nth(1).unwrap().contains(title), "{screen}");
+        trial.keys("Esc");
+    }
+}

@@ -16,7 +16,7 @@ pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Bu
     match &app.overlay {
         Overlay::None => {}
         Overlay::Help(scroll) => {
-            let groups = super::help_groups();
+            let groups = super::help_groups(app);
             let view = HelpView { title: "Keys and commands", groups: &groups, scroll: *scroll };
             help::draw(&view, theme, screen, buffer);
         }

@@ -3,7 +3,7 @@
 use crate::ui::app::App;
 use crate::ui::bench::{Bench, RecordState};
 use crate::ui::colour::Tone;
-use crate::ui::keys::{Action, hint_key};
+use crate::ui::keys::Action;
 use crate::ui::overlay::{LinePrompt, Overlay, Purpose};
 use crate::ui::panes::Pane;
 
@@ -77,7 +77,7 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
             (Action::Quit, "leave"),
         ]
     };
-    actions.iter().map(|(action, does)| (hint_key(*action), *does)).collect()
+    actions.iter().map(|(action, does)| (app.keymap.hint(*action), *does)).collect()
 }
 
 /// While one side of a value is being typed: how many footprints lie there.
