@@ -5,7 +5,7 @@ use std::fmt;
 use jiff::Timestamp;
 use serde::{Deserialize, Serialize};
 
-use super::FootprintSet;
+use super::{FootprintSet, SpotCheck};
 
 /// Names one decision for ever.
 #[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord, Hash, Serialize, Deserialize)]
@@ -40,6 +40,25 @@ pub struct ChannelName {
     pub index: usize,
     /// cm-1.
     pub wavenumber: f64,
+}
+
+/// What a person says of a suggestion.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case")]
+pub enum Ruling {
+    /// It is as suggested.
+    Accepted,
+    /// It is not.
+    Overruled,
+}
+
+/// A flag and where it is spoken of.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+pub struct FlagAt {
+    /// The flag's name.
+    pub flag: String,
+    /// Where.
+    pub footprints: FootprintSet,
 }
 
 /// What is decided.
@@ -87,6 +106,22 @@ pub enum Act {
         /// Which.
         footprints: FootprintSet,
     },
+    /// A person's word on what a rulebook suggests, in one step: these flags hold, those do not,
+    /// and the footprints count as looked at.
+    Judge {
+        /// Whether the suggestion was accepted.
+        ruling: Ruling,
+        /// The rulebook that suggested: its name and fingerprint.
+        rulebook: String,
+        /// Flags that hold, and where.
+        given: Vec<FlagAt>,
+        /// Flags that do not hold, and where.
+        withdrawn: Vec<FlagAt>,
+        /// All footprints judged.
+        footprints: FootprintSet,
+    },
+    /// What a blind sample of the plain footprints showed. It changes no flag.
+    SpotCheck(SpotCheck),
     /// Undo: the named decision counts for nothing. Undoing a revocation is redo.
     Revoke {
         /// The decision.
@@ -128,6 +163,7 @@ impl Act {
                 | Self::FlagChannels { .. }
                 | Self::WithdrawChannels { .. }
                 | Self::Assess { .. }
+                | Self::Judge { .. }
         )
     }
 
@@ -148,6 +184,7 @@ impl Act {
             Self::Flag { footprints, .. }
             | Self::Withdraw { footprints, .. }
             | Self::Assess { footprints }
+            | Self::Judge { footprints, .. }
             | Self::Comment { footprints } => Some(footprints),
             Self::SignOff { rest_assessed, .. } => Some(rest_assessed),
             _ => None,

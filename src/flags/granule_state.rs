@@ -1,7 +1,7 @@
 //! How far a granule has come, from its decisions.
 
 use super::history::{Ordered, standing_among};
-use super::{Act, GranuleState};
+use super::{Act, Decision, GranuleState};
 
 /// How far the granule has come: what the latest standing sign-off, setting aside or reopening
 /// says, unless a person changed flags since.
@@ -20,6 +20,22 @@ pub(super) fn granule_state(ordered: &Ordered<'_>) -> GranuleState {
         Some((_, state)) => state,
         None if touched(ordered) => GranuleState::InHand,
         None => GranuleState::Untouched,
+    }
+}
+
+/// How far a granule has come after one more decision, which takes none back.
+pub(super) fn granule_state_after(before: GranuleState, decision: &Decision) -> GranuleState {
+    if !decision.by_person() {
+        return before;
+    }
+    match &decision.act {
+        Act::SignOff { .. } => GranuleState::SignedOff,
+        Act::SetAside => GranuleState::SetAside,
+        Act::Reopen => GranuleState::InHand,
+        act if act.changes_flags() => GranuleState::InHand,
+        // Words alone, or an act of a newer version, begin a granule but undo no sign-off.
+        _ if before == GranuleState::Untouched => GranuleState::InHand,
+        _ => before,
     }
 }
 

@@ -107,6 +107,8 @@ const KNOWN: &[&str] = &[
     "flag_channels",
     "withdraw_channels",
     "assess",
+    "judge",
+    "spot_check",
     "revoke",
     "sign_off",
     "set_aside",

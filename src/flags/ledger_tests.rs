@@ -27,6 +27,25 @@ pub(super) fn time(second: i64) -> Timestamp {
     Timestamp::from_second(1_700_000_000 + second).unwrap()
 }
 
+/// An accepted suggestion: flags given, flags withdrawn, all that was judged.
+pub(super) fn judge(
+    given: &[(&str, std::ops::Range<usize>)],
+    withdrawn: &[(&str, std::ops::Range<usize>)],
+    judged: std::ops::Range<usize>,
+) -> Act {
+    let part = |(flag, range): &(&str, std::ops::Range<usize>)| FlagAt {
+        flag: (*flag).to_owned(),
+        footprints: FootprintSet::range(range.clone()),
+    };
+    Act::Judge {
+        ruling: Ruling::Accepted,
+        rulebook: "built-in (0123)".to_owned(),
+        given: given.iter().map(part).collect(),
+        withdrawn: withdrawn.iter().map(part).collect(),
+        footprints: FootprintSet::range(judged),
+    }
+}
+
 fn cloudy(footprints: std::ops::Range<usize>) -> Act {
     Act::Flag {
         flag: "cloudy".to_owned(),
@@ -97,6 +116,18 @@ fn what_is_written_is_read_back() {
         Act::WithdrawChannels { flag: "dead".to_owned(), channels: Vec::new() },
         Act::Assess { footprints: FootprintSet::all(2) },
         Act::SignOff { rest_assessed: FootprintSet::all(20), summary: "20 usable".to_owned() },
+        judge(&[("cloudy", 0..3)], &[("so2", 3..4)], 0..5),
+        Act::SpotCheck(SpotCheck {
+            rulebook: "built-in (0123)".to_owned(),
+            seed: u64::MAX,
+            strata: vec![Stratum {
+                flagged: true,
+                plain: 20,
+                right: FootprintSet::all(3),
+                wrong: FootprintSet::single(4),
+                untold: FootprintSet::empty(),
+            }],
+        }),
         Act::SetAside,
         Act::Reopen,
         Act::Comment { footprints: FootprintSet::empty() },

@@ -10,6 +10,7 @@
 mod author;
 mod campaign;
 mod campaign_settings;
+mod clopper_pearson;
 mod decision;
 mod footprint_set;
 mod granule_state;
@@ -30,19 +31,23 @@ mod replay;
 #[cfg(test)]
 mod replay_tests;
 mod review_state;
+mod spot_check;
 mod state;
 mod vocabulary;
 
 pub use author::{Author, file_name_part};
 pub use campaign::{Campaign, CampaignError, GranuleIdentity};
 pub use campaign_settings::{CampaignSettings, SETTINGS_FILE};
-pub use decision::{Act, ChannelName, Decision, DecisionId, Origin};
+pub use clopper_pearson::clopper_pearson;
+pub use decision::{Act, ChannelName, Decision, DecisionId, FlagAt, Origin, Ruling};
 pub use footprint_set::FootprintSet;
 pub use history::{redo_target, standing, undo_target};
 pub use key_settings::KeySetting;
 pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};
 pub use ledger_reader::{LedgerProblem, LedgerReading, Loss, read_ledgers};
 pub use ledger_writer::{LedgerEvent, LedgerWriter, NotKept};
+pub use replay::Replay;
 pub use review_state::{GranuleState, ReviewState};
-pub use state::{ChannelFlags, Counts, FlagState};
+pub use spot_check::{ErrorRate, SpotCheck, Stratum, pooled};
+pub use state::{ChannelFlags, Counts, DOUBTFUL, FlagState};
 pub use vocabulary::{FlagExtension, FlagKind, Scope, Vocabulary, VocabularyError};

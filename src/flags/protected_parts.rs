@@ -20,7 +20,9 @@ pub(super) fn protected_parts(
     let mut assessed = vec![0usize; footprints];
     for (at, decision) in ordered.standing_ones() {
         match &decision.act {
-            Act::Assess { footprints: set } | Act::SignOff { rest_assessed: set, .. }
+            Act::Assess { footprints: set }
+            | Act::Judge { footprints: set, .. }
+            | Act::SignOff { rest_assessed: set, .. }
                 if decision.by_person() =>
             {
                 set.clipped(footprints).iter().for_each(|place| assessed[place] = at + 1);

@@ -5,12 +5,14 @@
 
 use std::collections::BTreeMap;
 
-use super::granule_state::granule_state;
+use jiff::Timestamp;
+
+use super::granule_state::{granule_state, granule_state_after};
 use super::history::Ordered;
 use super::plane::Plane;
 use super::protected_parts::protected_parts;
 use super::{
-    Act, ChannelName, Decision, FlagState, FootprintSet, GranuleState, ReviewState, Scope,
+    Act, ChannelName, Decision, FlagAt, FlagState, FootprintSet, GranuleState, ReviewState, Scope,
     Vocabulary,
 };
 use crate::system::clean_text;
@@ -28,9 +30,24 @@ impl FlagState {
     /// that takes back its own flag does not take it from under a person's assessment; a
     /// withdrawal makes a footprint decided only where the flag stood.
     pub fn replay(footprints: usize, decisions: &[Decision], vocabulary: &Vocabulary) -> Self {
+        Replay::of(footprints, decisions, vocabulary).state()
+    }
+}
+
+/// Decisions folded so far, to which later ones can be added without beginning anew.
+pub struct Replay {
+    fold: Fold,
+    granule: GranuleState,
+    /// The place of the latest decision in the order of all.
+    latest: Option<(Timestamp, String, u64)>,
+}
+
+impl Replay {
+    /// Folds all decisions about a granule, in any order, by the rules of [`FlagState::replay`].
+    pub fn of(footprints: usize, decisions: &[Decision], vocabulary: &Vocabulary) -> Self {
         let ordered = Ordered::new(decisions);
         let protected = protected_parts(footprints, &ordered);
-        let mut fold = Fold::new(footprints, vocabulary);
+        let mut fold = Fold::new(footprints, vocabulary.clone());
         for (at, decision) in ordered.decisions.iter().enumerate() {
             if ordered.standing[at] {
                 fold.apply(decision, None);
@@ -38,12 +55,37 @@ impl FlagState {
                 fold.apply(decision, Some(part));
             }
         }
-        fold.finish(granule_state(&ordered))
+        let latest = ordered.decisions.last().map(|decision| place(decision));
+        Self { fold, granule: granule_state(&ordered), latest }
+    }
+
+    /// Folds one more decision on top. False, and nothing is folded, where only beginning anew
+    /// tells what comes of it: it takes another back, or belongs before one that is folded already.
+    pub fn add(&mut self, decision: &Decision) -> bool {
+        let place = place(decision);
+        let revokes = matches!(decision.act, Act::Revoke { .. });
+        if revokes || self.latest.as_ref().is_some_and(|latest| *latest >= place) {
+            return false;
+        }
+        self.fold.apply(decision, None);
+        self.granule = granule_state_after(self.granule, decision);
+        self.latest = Some(place);
+        true
+    }
+
+    /// The flags as they stand.
+    pub fn state(&self) -> FlagState {
+        self.fold.state(self.granule)
     }
 }
 
-struct Fold<'a> {
-    vocabulary: &'a Vocabulary,
+fn place(decision: &Decision) -> (Timestamp, String, u64) {
+    let (at, writer, sequence) = decision.order();
+    (at, writer.to_owned(), sequence)
+}
+
+struct Fold {
+    vocabulary: Vocabulary,
     whole: Plane,
     bands: BTreeMap<String, Plane>,
     review: Vec<ReviewState>,
@@ -54,8 +96,8 @@ struct Fold<'a> {
     problems: BTreeMap<String, usize>,
 }
 
-impl<'a> Fold<'a> {
-    fn new(footprints: usize, vocabulary: &'a Vocabulary) -> Self {
+impl Fold {
+    fn new(footprints: usize, vocabulary: Vocabulary) -> Self {
         Self {
             vocabulary,
             whole: Plane::new(footprints),
@@ -89,6 +131,10 @@ impl<'a> Fold<'a> {
                 let footprints = self.inside(only.unwrap_or(footprints));
                 self.assess(&footprints, person);
             }
+            // Only a person can rule on what tests suggest.
+            Act::Judge { given, withdrawn, footprints, .. } if person => {
+                self.judge(given, withdrawn, footprints);
+            }
             // Only a person can answer for a granule.
             Act::SignOff { rest_assessed, .. } if person => {
                 let footprints = self.inside(rest_assessed);
@@ -99,6 +145,23 @@ impl<'a> Fold<'a> {
             }
             _ => {}
         }
+    }
+
+    fn judge(&mut self, given: &[FlagAt], withdrawn: &[FlagAt], judged: &FootprintSet) {
+        for part in given {
+            if let Some(bit) = self.bit(&part.flag, Scope::Footprint) {
+                let footprints = self.inside(&part.footprints);
+                self.flag(bit, &footprints, None, true);
+            }
+        }
+        for part in withdrawn {
+            if let Some(bit) = self.bit(&part.flag, Scope::Footprint) {
+                let footprints = self.inside(&part.footprints);
+                self.withdraw(bit, &footprints, None, true);
+            }
+        }
+        let judged = self.inside(judged);
+        self.assess(&judged, true);
     }
 
     fn flag(&mut self, bit: u32, at: &FootprintSet, bands: Option<&[String]>, person: bool) {
@@ -190,20 +253,22 @@ impl<'a> Fold<'a> {
         *self.problems.entry(clean_text(&what)).or_default() += 1;
     }
 
-    fn finish(self, granule: GranuleState) -> FlagState {
-        let strip = |(flags, _spoken)| flags;
-        let channels = self.channels.into_iter().map(|(band, channels)| {
-            (band, channels.into_iter().map(|(index, entry)| (index, strip(entry))).collect())
-        });
-        let bands = self.bands.into_iter().map(|(name, plane)| (name, plane.flags));
-        let problems = self.problems.into_iter().map(|(what, times)| {
-            let decisions = if times == 1 { "decision" } else { "decisions" };
+    fn state(&self, granule: GranuleState) -> FlagState {
+        let flags_of =
+            |(index, (flags, _)): (&usize, &(super::ChannelFlags, u32))| (*index, *flags);
+        let channels = self.channels.iter();
+        let channels = channels
+            .map(|(band, channels)| (band.clone(), channels.iter().map(flags_of).collect()));
+        let bands =
+            self.bands.iter().filter(|(_, plane)| plane.flags.iter().any(|flags| *flags != 0));
+        let problems = self.problems.iter().map(|(what, times)| {
+            let decisions = if *times == 1 { "decision" } else { "decisions" };
             format!("{what} ({times} {decisions}): kept in the ledger, not in the flags")
         });
         FlagState {
-            footprint_flags: self.whole.flags,
-            band_flags: bands.filter(|(_, flags)| flags.iter().any(|&flags| flags != 0)).collect(),
-            review: self.review,
+            footprint_flags: self.whole.flags.clone(),
+            band_flags: bands.map(|(name, plane)| (name.clone(), plane.flags.clone())).collect(),
+            review: self.review.clone(),
             channel_flags: channels.collect(),
             granule,
             problems: problems.collect(),

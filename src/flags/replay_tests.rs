@@ -3,7 +3,7 @@
 use jiff::SignedDuration;
 use proptest::prelude::*;
 
-use super::ledger_tests::time;
+use super::ledger_tests::{judge, time};
 use super::*;
 
 const FOOTPRINTS: usize = 12;
@@ -76,6 +76,31 @@ fn channels(name: &str, index: usize) -> Act {
 fn nothing_assessed_is_nothing_usable() {
     let counts = Story::default().state().counts(&Vocabulary::released());
     assert_eq!((counts.not_assessed, counts.usable), (FOOTPRINTS, 0));
+}
+
+#[test]
+fn a_ruling_gives_withdraws_and_settles_in_one_step() {
+    let mut story = Story::default();
+    story.test(flag("doubtful", &[2, 3, 4, 5]));
+    story.test(assess(&[2, 3, 4, 5]));
+    assert_eq!(story.state().counts(&Vocabulary::released()).in_doubt, 4);
+    let ruling = story.anna(judge(&[("cloudy", 2..4)], &[("doubtful", 2..5)], 2..5));
+    let state = story.state();
+    assert_eq!(state.footprint_flags[2..6], [1, 1, 0, 1 << 8]);
+    assert!(state.review[2..5].iter().all(|one| *one == ReviewState::DecidedByPerson));
+    assert_eq!(state.granule, GranuleState::InHand);
+    // Screened again, the tests say otherwise: the ruling stands.
+    story.test(flag("so2", &[2, 3, 4, 5]));
+    story.test(flag("doubtful", &[2, 3, 4, 5]));
+    let state = story.state();
+    assert_eq!(state.footprint_flags[2..6], [1, 1, 0, 1 << 8 | 1 << 3]);
+    assert_eq!(state.counts(&Vocabulary::released()).in_doubt, 1);
+    story.anna(revoke(&ruling));
+    assert_eq!(story.state().footprint_flags[2], 1 << 8 | 1 << 3, "one undo takes all of it back");
+    // Only a person can rule.
+    let before = story.state();
+    story.test(judge(&[("cloudy", 0..9)], &[], 0..9));
+    assert_eq!(story.state(), before);
 }
 
 #[test]
@@ -302,6 +327,9 @@ fn any_act() -> impl Strategy<Value = Act> {
         }),
         1 => footprints.clone().prop_map(|at| assess(&at)),
         1 => footprints.prop_map(|at| sign_off(&at)),
+        1 => (0..4usize, 4..9usize).prop_map(|(from, to)| {
+            judge(&[("cloudy", from..to)], &[("so2", from..6)], from..to)
+        }),
         2 => id.prop_map(|decision| Act::Revoke { decision }),
         1 => Just(Act::SetAside),
         1 => Just(Act::Reopen),
@@ -359,6 +387,30 @@ proptest! {
         prop_assert_eq!(flags(&story), before);
         story.anna(revoke(&undo));
         prop_assert_eq!(flags(&story), after);
+    }
+
+    /// Decisions added one by one give what a replay of all of them gives.
+    #[test]
+    fn adding_is_replaying(mut decisions in any_story(), first in 0usize..30) {
+        let vocabulary = Vocabulary::released();
+        for decision in &mut decisions {
+            // Nobody can have revoked what is not decided yet.
+            let own = decision.id.sequence;
+            if matches!(&decision.act, Act::Revoke { decision } if decision.sequence >= own) {
+                decision.act = Act::Reopen;
+            }
+        }
+        let (before, later) = decisions.split_at(first.min(decisions.len()));
+        let mut replay = Replay::of(FOOTPRINTS, before, &vocabulary);
+        for (count, decision) in later.iter().enumerate() {
+            let all = &decisions[..=before.len() + count];
+            let added = replay.add(decision);
+            prop_assert_eq!(added, !matches!(decision.act, Act::Revoke { .. }));
+            if !added {
+                replay = Replay::of(FOOTPRINTS, all, &vocabulary);
+            }
+            prop_assert_eq!(replay.state(), FlagState::replay(FOOTPRINTS, all, &vocabulary));
+        }
     }
 
     /// A test's decisions never change what a person decided, wherever they come in time.

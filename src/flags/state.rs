@@ -4,6 +4,9 @@ use std::collections::BTreeMap;
 
 use super::{FootprintSet, GranuleState, ReviewState, Vocabulary};
 
+/// The flag that tests set where they leave a footprint in doubt.
+pub const DOUBTFUL: &str = "doubtful";
+
 /// The flags of one channel.
 #[derive(Debug, Clone, Copy, Default, PartialEq)]
 pub struct ChannelFlags {
@@ -47,6 +50,8 @@ pub struct Counts {
     pub by_person: usize,
     /// Assessed by a test only.
     pub by_test: usize,
+    /// That tests left in doubt and no person has settled.
+    pub in_doubt: usize,
     /// Footprints per flag name, limited to bands or not; flags without any left out.
     pub per_flag: BTreeMap<String, usize>,
     /// Channels with a flag.
@@ -90,6 +95,7 @@ impl FlagState {
     pub fn counts(&self, vocabulary: &Vocabulary) -> Counts {
         let mut counts = Counts { footprints: self.review.len(), ..Counts::default() };
         let mut per_bit = [0usize; 32];
+        let doubtful = vocabulary.by_name(DOUBTFUL).map_or(0, super::FlagKind::mask);
         for (footprint, &review) in self.review.iter().enumerate() {
             let flags = self.any_flags(footprint);
             match (flags, review) {
@@ -98,7 +104,9 @@ impl FlagState {
                 _ => counts.flagged += 1,
             }
             counts.usable += usize::from(self.usable(footprint, vocabulary));
-            counts.by_person += usize::from(review == ReviewState::DecidedByPerson);
+            let settled = review == ReviewState::DecidedByPerson;
+            counts.in_doubt += usize::from(flags & doubtful != 0 && !settled);
+            counts.by_person += usize::from(settled);
             counts.by_test += usize::from(review == ReviewState::AssessedByTest);
             let mut left = flags;
             while left != 0 {

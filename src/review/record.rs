@@ -7,7 +7,8 @@ use jiff::Timestamp;
 
 use crate::flags::{
     Act, Author, Campaign, CampaignError, Counts, Decision, DecisionId, FlagState, GranuleIdentity,
-    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, Vocabulary, read_ledgers,
+    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, Replay, Vocabulary, read_ledgers,
+    standing,
 };
 
 /// The decisions about a granule, their sum, and the writer of our own.
@@ -19,7 +20,9 @@ pub struct Record {
     writer: LedgerWriter,
     decisions: Vec<Decision>,
     problems: Vec<String>,
+    replay: Replay,
     state: FlagState,
+    standing: Vec<bool>,
     counts: Counts,
     failure: Option<String>,
 }
@@ -41,29 +44,39 @@ impl Record {
         let mut writer = LedgerWriter::start(campaign, &identity, author, program, now)?;
         writer.saw(&decisions);
         let footprints = identity.footprints.iter().map(|(_, length)| length).product();
+        let vocabulary = campaign.settings().vocabulary.clone();
+        let replay = Replay::of(footprints, &decisions, &vocabulary);
         let mut record = Record {
             identity,
-            vocabulary: campaign.settings().vocabulary.clone(),
             person: author.person.clone(),
             footprints,
             writer,
             decisions,
             problems: problems.iter().map(ToString::to_string).collect(),
-            state: FlagState::untouched(footprints),
+            state: replay.state(),
+            replay,
+            standing: Vec::new(),
             counts: Counts::default(),
+            vocabulary,
             failure: None,
         };
-        record.fold();
+        record.sum_up();
         Ok(record)
     }
 
     /// Hands a decision to the writer and folds it in: the one way to change anything.
     pub(super) fn decide(&mut self, act: Act, why: Option<String>, now: Timestamp) {
         let decision = self.writer.append(Origin::Person, act, why, now);
+        let added = self.replay.add(&decision);
         self.decisions.push(decision);
         // The writer tries everything that is pending once more: what it says next counts.
         self.failure = None;
-        self.fold();
+        if added {
+            self.standing.push(true);
+            self.take_state();
+        } else {
+            self.fold();
+        }
     }
 
     /// Decides as a test, by its name; the caller folds when all is said.
@@ -78,8 +91,19 @@ impl Record {
         self.decisions.push(decision);
     }
 
+    /// Folds all decisions anew.
     pub(super) fn fold(&mut self) {
-        self.state = FlagState::replay(self.footprints, &self.decisions, &self.vocabulary);
+        self.replay = Replay::of(self.footprints, &self.decisions, &self.vocabulary);
+        self.sum_up();
+    }
+
+    fn sum_up(&mut self) {
+        self.standing = standing(&self.decisions);
+        self.take_state();
+    }
+
+    fn take_state(&mut self) {
+        self.state = self.replay.state();
         self.counts = self.state.counts(&self.vocabulary);
     }
 
@@ -164,6 +188,11 @@ impl Record {
     /// All decisions in their order, everybody's.
     pub fn decisions(&self) -> &[Decision] {
         &self.decisions
+    }
+
+    /// For each of them, whether it stands: not taken back, or taken back and put back again.
+    pub fn standing(&self) -> &[bool] {
+        &self.standing
     }
 
     /// What was wrong with the ledgers, in words.

@@ -3,7 +3,7 @@
 use jiff::Timestamp;
 
 use super::{Record, Refusal};
-use crate::flags::{Act, Decision, DecisionId, FootprintSet, Origin, Scope, standing};
+use crate::flags::{Act, DOUBTFUL, Decision, DecisionId, FootprintSet, Origin, Scope};
 use crate::screening::Screened;
 
 /// What was written down.
@@ -46,7 +46,7 @@ pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     }
     let doubtful: FootprintSet = all().filter(|at| screened.is_doubtful(*at)).collect();
     let why = format!("doubt {} or more", screened.rulebook.doubt_cut);
-    acts.push((flag_act("doubtful", doubtful), Some(why)));
+    acts.push((flag_act(DOUBTFUL, doubtful), Some(why)));
     let assessed = all().filter(|at| screened.assessed[*at]).collect();
     let rulebook = &screened.rulebook;
     let why = format!("rulebook {} ({})", rulebook.name, rulebook.fingerprint);
@@ -129,8 +129,8 @@ impl Record {
     /// The decisions of one rulebook that stand, in their order, and who else decided as a test.
     fn standing_tests(&self, rulebook: &str) -> (Vec<Decision>, Vec<String>) {
         let (mut own, mut others) = (Vec::new(), Vec::new());
-        let stand = standing(self.decisions());
-        let standing_ones = self.decisions().iter().zip(stand).filter(|(_, stands)| *stands);
+        let standing_ones =
+            self.decisions().iter().zip(self.standing()).filter(|(_, stands)| **stands);
         for (decision, _) in standing_ones {
             match &decision.origin {
                 Origin::Test(_) if matches!(decision.act, Act::Revoke { .. }) => {}

@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use jiff::Timestamp;
 
-use crate::flags::{Act, Decision, GranuleState, Scope};
+use crate::flags::{Act, Decision, GranuleState, Ruling, Scope};
 use crate::review::{Record, Refusal};
 use crate::tray::Standing;
 
@@ -213,6 +213,9 @@ pub fn words(decision: &Decision) -> String {
             format!("{flag} withdrawn at {} channels", channels.len())
         }
         Act::Assess { .. } => format!("looked at {count}"),
+        Act::Judge { ruling: Ruling::Accepted, .. } => format!("suggestion accepted at {count}"),
+        Act::Judge { ruling: Ruling::Overruled, .. } => format!("suggestion overruled at {count}"),
+        Act::SpotCheck(check) => format!("spot check: {}", check.words()),
         Act::Revoke { .. } => "undo".to_owned(),
         Act::SignOff { .. } => "sign-off".to_owned(),
         Act::SetAside => "set aside".to_owned(),

@@ -4,7 +4,7 @@ use jiff::Timestamp;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 
-use crate::flags::{Act, Decision, Scope, standing};
+use crate::flags::{Act, Decision, Scope};
 use crate::review::Record;
 use crate::system::clean_text;
 use crate::ui::app::App;
@@ -104,11 +104,10 @@ fn decided(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
 
 /// The latest decisions about a footprint that stand: what, who, when, why.
 fn decisions(record: &Record, footprint: usize) -> Vec<EvidenceRow> {
-    let standing = standing(record.decisions());
     let about = |decision: &&Decision| {
         decision.act.footprints().is_some_and(|footprints| footprints.contains(footprint))
     };
-    let stand = record.decisions().iter().zip(standing).filter(|(_, stands)| *stands);
+    let stand = record.decisions().iter().zip(record.standing()).filter(|(_, stands)| **stands);
     let mut latest: Vec<&Decision> = stand.map(|(decision, _)| decision).filter(about).collect();
     let skipped = latest.len().saturating_sub(MOST_DECISIONS);
     latest.drain(..skipped);
