@@ -214,7 +214,9 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
         Ok(layer) => {
             if bench.layer.text != bench.wanted {
                 bench.side = None;
-                bench.layer = ShownLayer::waiting(&bench.wanted);
+                let new = ShownLayer::waiting(&bench.wanted);
+                let before = std::mem::replace(&mut bench.layer, new);
+                bench.other_layer = Some(before).filter(|layer| !layer.values.is_empty());
             }
             let difference = layer.unit == LayerUnit::KelvinDifference;
             bench.layer.fill(layer.values, layer.unit.label(), difference, layer.notes);

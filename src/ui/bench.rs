@@ -7,7 +7,7 @@ use crate::flags::FootprintSet;
 use crate::granule::Channel;
 use crate::review::{Review, Spectrum};
 
-pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState, Tests};
+pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState, Signs, Tests};
 use super::channels::Channels;
 use super::overlay::Selection;
 use super::panes::Arrangement;
@@ -43,6 +43,8 @@ pub struct Bench {
     pub side: Option<Side>,
     /// The layer on show.
     pub layer: ShownLayer,
+    /// The layer that was on show before, to go back to.
+    pub other_layer: Option<ShownLayer>,
     /// The layer asked for: the one on show, or the one that takes its place when it is there.
     pub wanted: String,
     /// The layers that keys step through.
@@ -69,6 +71,10 @@ pub struct Bench {
     pub radiance: bool,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
+    /// What the signs over the Field tell.
+    pub signs: Signs,
+    /// Whether cursor, box and pins are marked on the Field.
+    pub marks: bool,
     /// The dimension that the Strip lies along, by its number among those of the footprints.
     pub strip_along: usize,
     /// How far the reading of the spectra has come.
@@ -112,6 +118,7 @@ impl Bench {
             anchor: None,
             side: None,
             layer: ShownLayer::waiting(&wanted),
+            other_layer: None,
             wanted,
             suggested,
             spectrum: None,
@@ -124,6 +131,8 @@ impl Bench {
             window: SpectrumWindow::whole(low, high),
             radiance: false,
             field_zoom: 0,
+            signs: Signs::default(),
+            marks: true,
             strip_along: 0,
             filling: Filling::default(),
             awaited: Awaited::default(),

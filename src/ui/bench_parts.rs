@@ -34,6 +34,42 @@ impl RecordState {
     }
 }
 
+/// What the signs over the Field tell.
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]
+pub enum Signs {
+    /// The flags that stand.
+    #[default]
+    Flags,
+    /// The flags that the tests set.
+    Tests,
+    /// The doubt of the tests in tenths.
+    Doubt,
+    /// Nothing: the layer alone.
+    None,
+}
+
+impl Signs {
+    /// The next, round and round.
+    pub fn next(self) -> Signs {
+        match self {
+            Signs::Flags => Signs::Tests,
+            Signs::Tests => Signs::Doubt,
+            Signs::Doubt => Signs::None,
+            Signs::None => Signs::Flags,
+        }
+    }
+
+    /// In words, for the status line.
+    pub fn words(self) -> &'static str {
+        match self {
+            Signs::Flags => "signs: the flags that stand",
+            Signs::Tests => "signs: the flags that the tests set",
+            Signs::Doubt => "signs: doubt in tenths, from 2 on",
+            Signs::None => "no signs: the layer alone",
+        }
+    }
+}
+
 /// A footprint pinned to compare.
 pub struct Pinned {
     /// Which.

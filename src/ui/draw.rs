@@ -29,8 +29,10 @@ fn draw_lines(app: &App, layout: &ScreenLayout, buffer: &mut Buffer) {
     let preview = views::side_preview(app);
     // What is being chosen matters more than what has been counted.
     let facts = preview.as_ref().map_or_else(|| views::status_facts(app), |_| Vec::new());
+    let under = views::under_cursor(app);
     let (message, tone) = match &preview {
         Some(words) => (words.as_str(), super::colour::Tone::Strong),
+        None if app.message.0.is_empty() => (under.as_str(), super::colour::Tone::Plain),
         None => (app.message.0.as_str(), app.message.1),
     };
     let view = StatusView { message, tone, facts: &facts };

@@ -91,6 +91,37 @@ pub fn set_range(app: &mut App, range: Option<(f64, f64)>) -> Vec<Job> {
     Vec::new()
 }
 
+/// Flicks between the layer on show and the one before it.
+pub fn other_layer(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let Some(other) = bench.other_layer.take() else {
+        app.say("no other layer was on show yet");
+        return Vec::new();
+    };
+    bench.side = None;
+    bench.wanted.clone_from(&other.text);
+    bench.other_layer = Some(std::mem::replace(&mut bench.layer, other));
+    // It may have been evaluated before all spectra were there.
+    refresh_layer(app)
+}
+
+/// Changes what the signs over the Field tell, or whether marks are there.
+pub fn signs(app: &mut App, action: Action) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let words = match action {
+        Action::Signs => {
+            bench.signs = bench.signs.next();
+            bench.signs.words()
+        }
+        _ => {
+            bench.marks = !bench.marks;
+            if bench.marks { "cursor, box and pins are marked" } else { "no marks on the Field" }
+        }
+    };
+    app.say(words);
+    Vec::new()
+}
+
 /// Zooms the map.
 pub fn field(app: &mut App, action: Action) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };

@@ -1,6 +1,7 @@
 //! Moving the cursor: over footprints, over the rows of the Tray, by key and by mouse.
 
 use super::app::App;
+use super::colour::Tone;
 use super::event::{Button, Mouse};
 use super::jobs::Job;
 use super::keys::Action;
@@ -42,7 +43,14 @@ pub fn step(app: &mut App, action: Action) -> Vec<Job> {
 /// Puts the cursor on a footprint and asks for its spectrum.
 pub fn go(app: &mut App, footprint: usize) -> Vec<Job> {
     let moved = app.bench_mut().is_some_and(|bench| bench.move_to(footprint));
-    if moved { looking::spectrum(app) } else { Vec::new() }
+    if !moved {
+        return Vec::new();
+    }
+    // What was said about another footprint makes room for what is under the cursor now.
+    if app.message.1 != Tone::Bad {
+        app.say("");
+    }
+    looking::spectrum(app)
 }
 
 /// Moves the Tray's own cursor; false for keys that mean nothing there.

@@ -7,6 +7,8 @@ use super::colour::{Palette, Scale};
 pub enum RangeChoice {
     /// From one percentile to its counterpart at the other end: 1 stands for 1 to 99.
     Percentile(u8),
+    /// As far below zero as above it, reaching the percentile 99 of the sizes.
+    AroundZero,
     /// From one value to another, in the layer's unit.
     Fixed(f64, f64),
 }
@@ -18,8 +20,11 @@ impl RangeChoice {
     /// The next one.
     pub fn next(self) -> RangeChoice {
         let place = Self::ROUND.iter().position(|tail| self == RangeChoice::Percentile(*tail));
-        let next = place.map_or(0, |place| (place + 1) % Self::ROUND.len());
-        RangeChoice::Percentile(Self::ROUND[next])
+        match place.map(|place| Self::ROUND.get(place + 1)) {
+            Some(Some(tail)) => RangeChoice::Percentile(*tail),
+            Some(None) => RangeChoice::AroundZero,
+            None => RangeChoice::Percentile(Self::ROUND[0]),
+        }
     }
 
     /// In words, for the status line.
@@ -29,6 +34,7 @@ impl RangeChoice {
             RangeChoice::Percentile(tail) => {
                 format!("colours span the percentiles {tail} to {}", 100 - tail)
             }
+            RangeChoice::AroundZero => "colours lie around zero".to_owned(),
             RangeChoice::Fixed(low, high) => format!("colours span {low} to {high}"),
         }
     }
@@ -87,13 +93,19 @@ impl ShownLayer {
             self.values.iter().any(|value| *value < 0.0)
                 && self.values.iter().any(|value| *value > 0.0)
         };
-        let palette =
-            if self.difference && both_signs() { Palette::Vik } else { Palette::default() };
+        let diverges = match range {
+            RangeChoice::AroundZero => true,
+            // A range that is the same to both sides was meant to.
+            RangeChoice::Fixed(low, high) if low == -high => true,
+            _ => self.difference && both_signs(),
+        };
+        let palette = if diverges { Palette::Vik } else { Palette::default() };
         let (mut low, mut high) = match range {
+            RangeChoice::AroundZero => tails(&self.values, 1),
             RangeChoice::Fixed(low, high) => (low, high),
             RangeChoice::Percentile(tail) => tails(&self.values, tail),
         };
-        if palette.is_diverging() && matches!(range, RangeChoice::Percentile(_)) {
+        if palette.is_diverging() && !matches!(range, RangeChoice::Fixed(..)) {
             let reach = low.abs().max(high.abs());
             (low, high) = (-reach, reach);
         }
@@ -136,6 +148,9 @@ mod tests {
         assert_eq!((layer.scale.low, layer.scale.high), (0.0, 1e9));
         layer.set_range(layer.range.next());
         assert_eq!((layer.scale.low, layer.scale.high), (5.0, 95.0));
+        layer.set_range(layer.range.next());
+        assert_eq!((layer.scale.low, layer.scale.high), (-99.0, 99.0), "around zero");
+        assert!(layer.scale.palette.is_diverging());
         assert_eq!(layer.range.next(), RangeChoice::Percentile(1));
     }
 

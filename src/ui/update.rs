@@ -66,6 +66,8 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::NextLayer | A::PreviousLayer | A::ChannelLayer | A::CycleRange => {
             looking::layer(app, action)
         }
+        A::OtherLayer => looking::other_layer(app),
+        A::Signs | A::Marks => looking::signs(app, action),
         A::FieldIn | A::FieldOut => looking::field(app, action),
         A::ChannelUp | A::ChannelDown | A::ChannelFarUp | A::ChannelFarDown | A::SwitchQuantity => {
             looking::trace(app, action)

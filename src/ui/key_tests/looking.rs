@@ -97,3 +97,49 @@ fn a_channel_that_is_not_where_it_was_asked_for_is_told() {
     trial.types(":go 2500").keys("Enter");
     assert!(trial.message().starts_with("no channel at 2500.00 cm-1"), "{}", trial.message());
 }
+
+#[test]
+fn a_key_flicks_between_two_layers() {
+    let (_place, mut trial) = one_granule();
+    trial.keys(";");
+    assert_eq!(trial.message(), "no other layer was on show yet");
+    trial.types(":layer lat").keys("Enter");
+    assert_eq!(trial.bench().layer.text, "lat");
+    for layer in ["bt(900)", "lat", "bt(900)"] {
+        trial.keys(";");
+        assert_eq!(trial.bench().layer.text, layer);
+        assert!(!trial.bench().layer.values.is_empty());
+        assert!(trial.screen(80, 24).contains(&format!("Field {layer} = ")));
+    }
+}
+
+#[test]
+fn what_is_under_the_cursor_stands_in_words() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("Right f c");
+    assert!(trial.message().contains("cloudy"), "what was done is said first");
+    trial.keys("Right Left");
+    assert!(trial.screen(120, 40).contains(" (0, 1) - "), "{}", trial.screen(120, 40));
+    assert!(trial.screen(120, 40).contains("cloudy"));
+}
+
+#[test]
+fn signs_and_marks_can_be_taken_off_the_field() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("f c Down Down");
+    let field = |trial: &mut crate::ui::trial::Trial| -> String {
+        let screen = trial.screen(80, 24);
+        screen
+            .lines()
+            .skip(1)
+            .take(11)
+            .map(|line| line.chars().skip(18).take(30).collect::<String>())
+            .collect()
+    };
+    assert!(field(&mut trial).contains('C') && field(&mut trial).contains('X'));
+    trial.keys("y y y Y");
+    assert_eq!(trial.message(), "no marks on the Field");
+    assert!(!field(&mut trial).contains('C') && !field(&mut trial).contains('X'));
+    trial.keys("y Y");
+    assert!(field(&mut trial).contains('C') && field(&mut trial).contains('X'));
+}

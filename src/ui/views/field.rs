@@ -3,7 +3,7 @@
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 
-use crate::flags::Scope;
+use super::field_signs;
 use crate::ui::app::{App, Table};
 use crate::ui::bench::Bench;
 use crate::ui::colour::Scale;
@@ -20,6 +20,7 @@ pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
 #[derive(Default)]
 struct FieldParts {
     title: String,
+    value: String,
     empty: Placement,
     pending: Vec<bool>,
     flags: Vec<u32>,
@@ -36,16 +37,13 @@ impl FieldParts {
         };
         FieldParts {
             title: title(bench),
+            value: value(bench),
             empty: Placement::default(),
             pending: pending(bench),
-            flags: flags(bench),
-            signs: signs(app),
+            flags: field_signs::masks(app, bench),
+            signs: field_signs::signs(app, bench),
             selected: selected(bench),
-            pins: bench
-                .pins
-                .iter()
-                .map(|pin| Pin { footprint: pin.footprint, letter: pin.letter })
-                .collect(),
+            pins: pins(bench),
         }
     }
 
@@ -54,6 +52,7 @@ impl FieldParts {
         let bench = app.bench();
         FieldView {
             title: &self.title,
+            value: &self.value,
             unit: bench.map_or("", |bench| &bench.layer.unit),
             placement: bench.map_or(&self.empty, |bench| &bench.placement),
             values: bench.map_or(&[], |bench| &bench.layer.values),
@@ -62,7 +61,7 @@ impl FieldParts {
             signs: &self.signs,
             selected: &self.selected,
             scale: bench.map_or_else(Scale::default, |bench| bench.layer.scale),
-            cursor: bench.map(|bench| bench.cursor),
+            cursor: bench.filter(|bench| bench.marks).map(|bench| bench.cursor),
             corners: bench.and_then(|bench| Some((bench.anchor?, bench.cursor))),
             pins: &self.pins,
             zoom: bench.map_or(0, |bench| bench.field_zoom),
@@ -91,20 +90,28 @@ fn title_without_granule(app: &App) -> String {
     }
 }
 
-/// The layer, its value under the cursor, and the granule's name where there is room.
+/// The layer, or why there is none.
 fn title(bench: &Bench) -> String {
     let layer = &bench.layer;
-    if let Some(problem) = &layer.problem {
-        return format!("{}: {problem}", layer.text);
+    match &layer.problem {
+        Some(problem) => format!("{}: {problem}", layer.text),
+        None if bench.wanted != layer.text => format!("{} → {}", layer.text, bench.wanted),
+        None => layer.text.clone(),
     }
-    let mut title = layer.text.clone();
-    if let Some(value) = layer.value(bench.cursor) {
-        title += &format!(" = {}", super::with_unit(value, &layer.unit));
+}
+
+/// The layer's value under the cursor.
+fn value(bench: &Bench) -> String {
+    let layer = &bench.layer;
+    match layer.value(bench.cursor) {
+        Some(value) => format!(" = {}", super::with_unit(value, &layer.unit)),
+        None => String::new(),
     }
-    if bench.wanted != layer.text {
-        title += &format!(" → {}", bench.wanted);
-    }
-    title
+}
+
+fn pins(bench: &Bench) -> Vec<Pin> {
+    let shown = bench.pins.iter().filter(|_| bench.marks);
+    shown.map(|pin| Pin { footprint: pin.footprint, letter: pin.letter }).collect()
 }
 
 /// Footprints of which some spectra have not been read.
@@ -125,30 +132,8 @@ fn pending(bench: &Bench) -> Vec<bool> {
     pending
 }
 
-fn flags(bench: &Bench) -> Vec<u32> {
-    let Some(record) = bench.record.open() else { return Vec::new() };
-    let state = record.state();
-    if state.band_flags.is_empty() {
-        return state.footprint_flags.clone();
-    }
-    (0..bench.footprints()).map(|footprint| state.any_flags(footprint)).collect()
-}
-
-/// Flags that keep a footprint from the retrieval come first.
-fn signs(app: &App) -> Vec<FlagSign> {
-    let vocabulary = &app.outside.campaign.settings().vocabulary;
-    let mut kinds = vocabulary.of_scope(Scope::Footprint);
-    kinds.sort_by_key(|kind| !kind.excludes);
-    let sign = |kind: &&crate::flags::FlagKind| FlagSign {
-        mask: kind.mask(),
-        glyph: kind.glyph,
-        tint: kind.bit,
-    };
-    kinds.iter().map(sign).collect()
-}
-
 fn selected(bench: &Bench) -> Vec<bool> {
-    if bench.side.is_none() && bench.anchor.is_none() {
+    if !bench.marks || bench.side.is_none() && bench.anchor.is_none() {
         return Vec::new();
     }
     let mut selected = vec![false; bench.footprints()];

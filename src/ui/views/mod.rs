@@ -4,6 +4,7 @@
 
 mod evidence;
 mod field;
+mod field_signs;
 mod help;
 mod overlay;
 mod status;
@@ -11,6 +12,7 @@ mod strip;
 mod tests_say;
 mod trace;
 mod tray;
+mod under_cursor;
 
 pub use evidence::evidence_rows;
 pub use field::footprint_under;
@@ -20,6 +22,7 @@ pub use status::{hints, side_preview, status_facts};
 pub use strip::strip_footprint_under;
 pub use trace::wavenumber_under;
 pub use tray::tray_row_under;
+pub use under_cursor::under_cursor;
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;

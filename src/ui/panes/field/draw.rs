@@ -2,17 +2,23 @@
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
+use unicode_width::UnicodeWidthStr;
 
 use super::legend;
 use super::marks;
 use super::pixels::draw_map;
 use super::{FieldView, Geometry};
 use crate::ui::colour::{ColourDepth, Theme, Tone};
-use crate::ui::widgets::{Frame, put};
+use crate::ui::widgets::{Frame, cut, put};
+
+/// So much of the layer's name is shown beside any value.
+const SHORTEST: usize = 6;
 
 /// Draws the Field: the map with its marks, and the legend below it.
 pub fn draw(view: &FieldView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer) {
-    let frame = Frame { name: "Field", rest: view.title, focused: view.focused };
+    let room = usize::from(area.width).saturating_sub(" Field ".len() + 3 + view.value.width());
+    let title = format!("{}{}", cut(view.title, room.max(SHORTEST), theme.ascii), view.value);
+    let frame = Frame { name: "Field", rest: &title, focused: view.focused };
     let Some(inner) = frame.draw(theme, area, buffer) else { return };
     let (map, legend) = rooms(inner);
     match Geometry::new(map, dots(theme), view.placement, view.cursor, view.zoom) {
@@ -67,6 +73,7 @@ mod tests {
     fn view<'a>(placement: &'a Placement, values: &'a [f64]) -> FieldView<'a> {
         FieldView {
             title: "bt(900)",
+            value: "",
             unit: "K",
             placement,
             values,
@@ -105,6 +112,39 @@ mod tests {
             screen.lines(),
             ["- Field --", " ::::----", " =.==c+++", ">****X###", " %%%%@@@?", " 200 to ~",]
         );
+    }
+
+    #[test]
+    fn a_long_title_keeps_the_value() {
+        let placement = Placement::unfold(&[4, 8], None);
+        let values = ramp(32);
+        let mut view = view(&placement, &values);
+        view.title = "sd3(bt(900)) - sd3(bt(1231))";
+        view.value = " = 12.34 K";
+        let mut screen = Screen::new(34, 8);
+        draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        assert_eq!(screen.lines()[0], "─ Field sd3(bt(900)) … = 12.34 K ─");
+    }
+
+    #[test]
+    fn the_cursor_does_not_hide_the_flag_just_set() {
+        let placement = Placement::unfold(&[4, 8], None);
+        let values = ramp(32);
+        let mut flags = [0; 32];
+        flags[9] = 4;
+        let mut view = view(&placement, &values);
+        view.cursor = Some(9);
+        for flags in [&flags[..], &[]] {
+            view.flags = flags;
+            let mut screen = Screen::new(34, 8);
+            draw(&view, &THEME, screen.area(), &mut screen.buffer);
+            let (x, y) = geometry(&view, &THEME, screen.area())
+                .and_then(|geometry| geometry.cell_of(&placement, 9))
+                .unwrap();
+            let cell = &screen.buffer[(x, y)];
+            assert_eq!(cell.symbol(), if flags.is_empty() { "╋" } else { "d" });
+            assert_eq!((cell.fg, cell.bg), (Color::Indexed(16), Color::Indexed(231)));
+        }
     }
 
     #[test]

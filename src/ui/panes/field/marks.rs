@@ -26,7 +26,7 @@ pub(super) fn draw(
     }
     let cursor = view.cursor.and_then(|footprint| geometry.cell_of(view.placement, footprint));
     if let Some(cell) = cursor {
-        draw_cursor(cell, geometry, theme, pane, buffer);
+        draw_cursor(cell, cursor_sign(view, theme), geometry, theme, pane, buffer);
     }
 }
 
@@ -36,15 +36,23 @@ fn put_mark(cell: (u16, u16), glyph: char, theme: &Theme, buffer: &mut Buffer) {
     }
 }
 
+/// The cursor's sign: that of the footprint's weightiest flag, so that what was just set is seen.
+fn cursor_sign(view: &FieldView<'_>, theme: &Theme) -> char {
+    let flags = view.cursor.and_then(|footprint| view.flags.get(footprint)).copied().unwrap_or(0);
+    let sign = view.signs.iter().find(|sign| sign.mask & flags != 0);
+    sign.map_or(if theme.ascii { 'X' } else { '╋' }, |sign| sign.glyph)
+}
+
 /// The cursor's cell, and ticks beside and above the map that find it even where it hides.
 fn draw_cursor(
     (x, y): (u16, u16),
+    sign: char,
     geometry: &Geometry,
     theme: &Theme,
     pane: Rect,
     buffer: &mut Buffer,
 ) {
-    put_mark((x, y), if theme.ascii { 'X' } else { '╋' }, theme, buffer);
+    put_mark((x, y), sign, theme, buffer);
     let [right, down] = if theme.ascii { [">", "v"] } else { ["▸", "▾"] };
     let rules = if theme.ascii { [" ", "-", "="] } else { [" ", "─", "━"] };
     let ticks = [(geometry.area.x.saturating_sub(1), y, right), (x, pane.y, down)];

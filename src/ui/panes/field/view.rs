@@ -10,6 +10,8 @@ use super::Placement;
 pub struct FieldView<'a> {
     /// What follows the pane's name in the title: the layer, as a rule.
     pub title: &'a str,
+    /// What ends the title and is never cut: the value under the cursor.
+    pub value: &'a str,
     /// The unit beside the legend; empty for a bare number.
     pub unit: &'a str,
     /// Where each footprint lies on the map.
