@@ -51,8 +51,7 @@ impl Granule {
         rulebook: &Rulebook,
     ) -> Result<Granule, Box<dyn std::error::Error>> {
         let review = Review::open(opening, file)?;
-        review.read_for(rulebook, &Cancel::new())?;
-        let screened = review.screen(rulebook);
+        let screened = review.screen(rulebook, &Cancel::new())?;
         let column = |text: &str| -> Result<Vec<f64>, Box<dyn std::error::Error>> {
             Ok(evaluate(&Expression::parse(text)?, &review.names())?.values)
         };

@@ -42,7 +42,7 @@ pub struct Reading {
     #[arg(long, hide = true, value_name = "SECONDS", value_parser = seconds)]
     pub reader_limit: Option<Duration>,
     /// Memory that the values of one file may take, as in `800M` or `4G`; most of what is free where
-    /// nothing is said
+    /// nothing is said. Values beyond it are read again when they are needed
     #[arg(long, value_name = "SIZE", value_parser = size)]
     pub memory: Option<u64>,
 }

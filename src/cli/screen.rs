@@ -138,8 +138,7 @@ fn one_file(
     desk: Option<&Desk>,
 ) -> anyhow::Result<Outcome> {
     let review = Review::open(opening, file)?;
-    review.read_for(rulebook, &Cancel::new())?;
-    let screened = review.screen(rulebook);
+    let screened = review.screen(rulebook, &Cancel::new())?;
     let recorded = match desk {
         None => None,
         Some(desk) => Some(record(desk, &review, &screened)?),
@@ -266,8 +265,7 @@ fn explain(
 ) -> anyhow::Result<Exit> {
     let review = Review::open(opening, file)?;
     let number = footprint("--explain", review.granule().footprints(), position)?;
-    review.read_for(rulebook, &Cancel::new())?;
-    let screened = review.screen(rulebook);
+    let screened = review.screen(rulebook, &Cancel::new())?;
     let evidence = screened.evidence(number).context("the footprint is gone")?;
     let mut out = std::io::stdout().lock();
     if json {

@@ -8,7 +8,7 @@ use super::exit::{self, UsageError};
 use super::inputs::{Inputs, Reading};
 use super::table::{Form, Heading, write_rows};
 use crate::granule::{Granule, Opening, ProblemKind};
-use crate::layers::{Expression, GranuleNames, Layer, LayerError, channels_needed, evaluate_all};
+use crate::layers::{Expression, GranuleNames, Layer, LayerError, evaluate_all};
 use crate::system::{Cancel, WriteError, clean_text, write_whole};
 
 /// What was typed.
@@ -174,19 +174,13 @@ fn shown(file: &Path) -> String {
     clean_text(&file.to_string_lossy())
 }
 
-/// Reads the bands that the layers need, and no others, and evaluates the layers.
+/// Evaluates the layers, while the bands that they need are read, and no others.
 fn layers(plan: &Plan, granule: &Granule) -> anyhow::Result<Vec<Layer>> {
     let cube = granule.cube();
-    let names = GranuleNames::new(granule, &cube);
     let expressions: Vec<&Expression> = plan.layers.iter().collect();
-    let mut bands: Vec<usize> =
-        channels_needed(&expressions, &names).iter().map(|channel| channel.band).collect();
-    bands.dedup();
-    granule.fill_bands(bands, &Cancel::new(), &mut |_| {})?;
-    evaluate_all(&expressions, &names)
-        .into_iter()
-        .map(|layer| layer.map_err(anyhow::Error::new))
-        .collect()
+    let layers = GranuleNames::new(granule, &cube)
+        .lend_all(&Cancel::new(), |names| evaluate_all(&expressions, names))?;
+    layers.into_iter().map(|layer| layer.map_err(anyhow::Error::new)).collect()
 }
 
 /// Says on standard error what was noticed: guesses about the file, notes on the layers.

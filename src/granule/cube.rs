@@ -1,12 +1,14 @@
 //! The values of all bands in memory, in slabs that arrive one after another.
 
-use std::ops::Range;
+use std::convert::Infallible;
+use std::ops::{Deref, Range};
 use std::sync::OnceLock;
-use std::sync::atomic::{AtomicUsize, Ordering};
+use std::sync::atomic::{AtomicBool, AtomicU64, AtomicUsize, Ordering};
 
 use super::band::{Band, Quantity};
 use super::decoder::Decoder;
 use super::footprints::FootprintGrid;
+use super::memory_plan::MemoryPlan;
 use super::problem::Problem;
 use crate::netcdf_files::{Samples, with_values};
 use crate::spectral::Hamming3;
@@ -23,12 +25,18 @@ pub enum Presence {
 
 /// The values of all bands, as far as they have been read, in the file's own types.
 ///
-/// Slabs lie along the first footprint dimension. Each is set once; readers never wait for it.
+/// Slabs lie along the first footprint dimension. Each is set once; readers never wait for it. Where
+/// not all of them fit into the memory that they may take, the others are never set; who needs them
+/// asks [`super::Granule`], which reads them.
 #[derive(Debug)]
 pub struct Cube {
     footprints: usize,
     row_length: usize,
     bands: Vec<BandCube>,
+    /// Bytes that the cube may take.
+    most: u64,
+    taken: AtomicU64,
+    full: AtomicBool,
 }
 
 #[derive(Debug)]
@@ -37,10 +45,13 @@ struct BandCube {
     channels: usize,
     rows: usize,
     rows_per_slab: usize,
+    value_size: usize,
     decoder: Decoder,
     scale: Scale,
     apodise: Option<Hamming3>,
     slabs: Vec<OnceLock<Samples>>,
+    /// Slabs whose values have been looked through.
+    looked_through: Vec<AtomicBool>,
     undeclared_fills: AtomicUsize,
 }
 
@@ -48,6 +59,8 @@ struct BandCube {
 pub(super) struct BandStorage {
     pub decoder: Decoder,
     pub rows_per_slab: usize,
+    /// Bytes of a value.
+    pub value_size: usize,
     pub apodise: Option<Hamming3>,
 }
 
@@ -82,6 +95,7 @@ impl Cube {
         footprints: &FootprintGrid,
         bands: &[Band],
         storage: Vec<BandStorage>,
+        memory: &MemoryPlan,
     ) -> Self {
         let rows = footprints.lengths().first().copied().unwrap_or(0);
         let band_cube = |(band, storage): (&Band, BandStorage)| BandCube {
@@ -89,6 +103,7 @@ impl Cube {
             channels: band.channels(),
             rows,
             rows_per_slab: storage.rows_per_slab,
+            value_size: storage.value_size,
             decoder: storage.decoder,
             apodise: storage.apodise,
             scale: match &band.quantity {
@@ -98,13 +113,21 @@ impl Cube {
                 Quantity::BrightnessTemperature(unit) => Scale::Temperature(*unit),
             },
             slabs: (0..rows.div_ceil(storage.rows_per_slab)).map(|_| OnceLock::new()).collect(),
+            looked_through: (0..rows.div_ceil(storage.rows_per_slab))
+                .map(|_| AtomicBool::new(false))
+                .collect(),
             undeclared_fills: AtomicUsize::new(0),
         };
-        Self {
+        let mut cube = Self {
             footprints: footprints.count(),
             row_length: footprints.row_length(),
             bands: bands.iter().zip(storage).map(band_cube).collect(),
-        }
+            most: 0,
+            taken: AtomicU64::new(0),
+            full: AtomicBool::new(false),
+        };
+        cube.most = memory.kept(cube.bytes());
+        cube
     }
 
     /// How many footprints the cube spans.
@@ -147,17 +170,63 @@ impl Cube {
 
     /// Bytes of the values that are here.
     pub fn held_bytes(&self) -> u64 {
-        let slabs = self.bands.iter().flat_map(|band| &band.slabs).filter_map(OnceLock::get);
-        let bytes = |slab: &Samples| slab.len() as u64 * slab.kind().size().unwrap_or(8) as u64;
-        slabs.map(bytes).sum()
+        self.taken.load(Ordering::Relaxed)
     }
 
-    /// Puts a slab in its place: footprint by footprint, the channels of each side by side.
-    pub(super) fn set_slab(&self, band: usize, slab: usize, samples: Samples) {
+    /// Bytes that all values take together.
+    pub fn bytes(&self) -> u64 {
+        (0..self.bands.len()).map(|band| self.bytes_over(band, self.footprints)).sum()
+    }
+
+    /// Whether memory is used up, and slabs have been left out.
+    pub fn is_full(&self) -> bool {
+        self.full.load(Ordering::Relaxed)
+    }
+
+    /// Bytes of a slab's values.
+    pub(super) fn slab_bytes(&self, band: usize, slab: usize) -> u64 {
+        self.bytes_over(band, self.footprints_of(band, slab).len())
+    }
+
+    fn bytes_over(&self, band: usize, footprints: usize) -> u64 {
         let band = &self.bands[band];
-        let undeclared = band.decoder.undeclared_fills(&samples);
+        footprints.saturating_mul(band.channels).saturating_mul(band.value_size) as u64
+    }
+
+    /// The values of a slab, if they are here.
+    pub(super) fn slab(&self, band: usize, slab: usize) -> Option<&Samples> {
+        self.bands[band].slabs[slab].get()
+    }
+
+    /// Takes the room that a slab needs; whether there was enough.
+    pub(super) fn take_room(&self, band: usize, slab: usize) -> bool {
+        let bytes = self.slab_bytes(band, slab);
+        let taken = |taken: u64| taken.checked_add(bytes).filter(|taken| *taken <= self.most);
+        let fits = self.taken.fetch_update(Ordering::Relaxed, Ordering::Relaxed, taken).is_ok();
+        self.full.fetch_or(!fits, Ordering::Relaxed);
+        fits
+    }
+
+    /// Gives room back that was taken for a slab.
+    pub(super) fn give_room(&self, band: usize, slab: usize) {
+        self.taken.fetch_sub(self.slab_bytes(band, slab), Ordering::Relaxed);
+    }
+
+    /// Puts a slab in its place, for which room was taken: footprint by footprint, the channels of
+    /// each side by side.
+    pub(super) fn set_slab(&self, band: usize, slab: usize, samples: Samples) {
+        self.look_through(band, slab, &samples);
         // Two that read the same slab read the same values; the first one counts.
-        if band.slabs[slab].set(samples).is_ok() {
+        if self.bands[band].slabs[slab].set(samples).is_err() {
+            self.give_room(band, slab);
+        }
+    }
+
+    /// Notices what is odd in the values of a slab, the first time that it is read.
+    pub(super) fn look_through(&self, band: usize, slab: usize, samples: &Samples) {
+        let band = &self.bands[band];
+        if !band.looked_through[slab].swap(true, Ordering::Relaxed) {
+            let undeclared = band.decoder.undeclared_fills(samples);
             band.undeclared_fills.fetch_add(undeclared, Ordering::Relaxed);
         }
     }
@@ -166,16 +235,32 @@ impl Cube {
     /// band's quantity. Missing values are NaN, and so is everything that is not here yet.
     pub fn values(&self, band: usize, footprint: usize, out: &mut Vec<f64>) -> Presence {
         let slab = self.slab_of(band, footprint);
+        match self.bands[band].slabs.get(slab).and_then(OnceLock::get) {
+            Some(samples) => {
+                self.values_of(band, slab, samples, footprint, out);
+                Presence::Here
+            }
+            None => {
+                out.clear();
+                out.resize(self.bands[band].channels, f64::NAN);
+                Presence::NotYet
+            }
+        }
+    }
+
+    /// The same, out of the values of the footprint's slab.
+    pub(super) fn values_of(
+        &self,
+        band: usize,
+        slab: usize,
+        samples: &Samples,
+        footprint: usize,
+        out: &mut Vec<f64>,
+    ) {
         let first = self.footprints_of(band, slab).start;
         let band = &self.bands[band];
         out.clear();
-        let Some(samples) = band.slabs.get(slab).and_then(OnceLock::get) else {
-            out.resize(band.channels, f64::NAN);
-            return Presence::NotYet;
-        };
-        let begin = (footprint - first) * band.channels;
-        band.decode_spectrum(samples, begin, out);
-        Presence::Here
+        band.decode_spectrum(samples, (footprint - first) * band.channels, out);
     }
 
     /// One channel's values over all footprints, into `out` (of [`Self::footprints`] values):
@@ -193,35 +278,41 @@ impl Cube {
         footprints: Range<usize>,
         out: &mut [f64],
     ) -> Presence {
-        let mut presence = Presence::Here;
+        let find = |slab| -> Result<_, Infallible> { Ok(self.slab(band, slab)) };
+        let Ok(all) = self.channels_of(band, channels, footprints, out, find);
+        if all { Presence::Here } else { Presence::NotYet }
+    }
+
+    /// The same, with the values of each slab from `find`; those of a slab that it has not are NaN.
+    /// Whether it had all of them.
+    pub(super) fn channels_of<Slab: Deref<Target = Samples>, Fault>(
+        &self,
+        band: usize,
+        channels: &[usize],
+        footprints: Range<usize>,
+        out: &mut [f64],
+        find: impl Fn(usize) -> Result<Option<Slab>, Fault>,
+    ) -> Result<bool, Fault> {
+        let (length, mut all) = (footprints.len(), true);
         let mut at = footprints.start;
         while at < footprints.end {
             let slab = self.slab_of(band, at);
             let held = self.footprints_of(band, slab);
             let part = at..held.end.min(footprints.end);
             let place = part.start - footprints.start..part.end - footprints.start;
-            match self.bands[band].slabs[slab].get() {
+            match find(slab)? {
                 Some(samples) => {
                     let first = part.start - held.start;
-                    self.bands[band].decode_channels(
-                        samples,
-                        first,
-                        channels,
-                        place,
-                        footprints.len(),
-                        out,
-                    );
+                    self.bands[band].decode_channels(&samples, first, channels, place, length, out);
                 }
                 None => {
-                    for out in out.chunks_mut(footprints.len()) {
-                        out[place.clone()].fill(f64::NAN);
-                    }
-                    presence = Presence::NotYet;
+                    out.chunks_mut(length).for_each(|out| out[place.clone()].fill(f64::NAN));
+                    all = false;
                 }
             }
             at = part.end;
         }
-        presence
+        Ok(all)
     }
 
     /// Decodes values that were read past the cube: one footprint's channels.
@@ -229,11 +320,6 @@ impl Cube {
         let mut out = Vec::new();
         self.bands[band].decode_spectrum(samples, 0, &mut out);
         out
-    }
-
-    /// Bytes that the whole cube takes once it is read.
-    pub fn bytes(&self, band: usize, value_size: usize) -> usize {
-        self.footprints * self.bands[band].channels * value_size
     }
 
     /// What was noticed in the values read so far.

@@ -47,23 +47,6 @@ pub enum GranuleError {
         /// Names that are there.
         nearest: Vec<String>,
     },
-    /// The values do not fit into memory.
-    #[error(
-        "{}: its values take {} in memory, and {} are to be had: cut it, for example with \
-         `ncks -d {},0,999 in.nc out.nc`, or say with `--memory` what they may take",
-        clean_text(&path.to_string_lossy()), in_gigabytes(*bytes), in_gigabytes(*budget),
-        clean_text(dimension)
-    )]
-    TooLarge {
-        /// The file.
-        path: PathBuf,
-        /// Bytes of all its values that are wanted.
-        bytes: u64,
-        /// Bytes that they may take.
-        budget: u64,
-        /// The dimension to cut it along.
-        dimension: String,
-    },
     /// The work was cancelled.
     #[error("cancelled")]
     Cancelled,
@@ -83,10 +66,6 @@ impl GranuleError {
     pub fn not_usable(path: &Path, why: impl AsRef<str>) -> Self {
         Self::NotUsable { path: path.to_owned(), why: clean_text(why.as_ref()) }
     }
-}
-
-fn in_gigabytes(bytes: u64) -> String {
-    format!("{:.2} GB", bytes as f64 / 1e9)
 }
 
 fn near(names: &[String]) -> String {

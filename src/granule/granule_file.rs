@@ -5,7 +5,7 @@ use std::sync::{Arc, OnceLock};
 
 use super::band::{Band, Channel, Quantity};
 use super::channels::{NoChannel, channel_near, channels_between};
-use super::cube::{Cube, Presence};
+use super::cube::Cube;
 use super::decoder::Decoder;
 use super::error::GranuleError;
 use super::footprint_dimensions::FootprintDimensions;
@@ -16,12 +16,10 @@ use super::identity::Identity;
 use super::layout::Layout;
 use super::layout_file::BandEntry;
 use super::opening::Opening;
+use super::passing::PassingSlabs;
 use super::problem::Problem;
-use super::side_by_side::side_by_side;
-use crate::netcdf_files::{
-    Demand, FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable,
-};
-use crate::system::{Cancel, clean_text, free_memory};
+use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadLimits, ReaderProgram, Variable};
+use crate::system::clean_text;
 
 /// A file of spectra over footprints. Many threads may use it at once.
 #[derive(Debug)]
@@ -35,7 +33,7 @@ pub struct Granule {
     pub(super) variables: Vec<FootprintVariable>,
     pub(super) problems: Vec<Problem>,
     pub(super) cube: Arc<Cube>,
-    pub(super) budget: u64,
+    pub(super) passing: PassingSlabs,
     pub(super) identity: OnceLock<Identity>,
 }
 
@@ -50,15 +48,6 @@ pub(super) struct BandSource {
     pub spectral: usize,
     /// What the layout file says of the band.
     pub said: BandEntry,
-}
-
-/// How far reading has come.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub struct Progress {
-    /// Slabs that are here.
-    pub done: usize,
-    /// All slabs.
-    pub total: usize,
 }
 
 impl Granule {
@@ -169,105 +158,6 @@ impl Granule {
         self.identity.get()
     }
 
-    /// The values read so far. It fills up behind while it is used.
-    pub fn cube(&self) -> Arc<Cube> {
-        Arc::clone(&self.cube)
-    }
-
-    /// Reads all slabs that are not here yet, band by band, with several threads; tells after each
-    /// slab how many are done.
-    ///
-    /// # Errors
-    /// A slab could not be read (of several, the first one), or `cancel` was asked for; what is here
-    /// stays. Or all of them would take more memory than they may.
-    pub fn fill(
-        &self,
-        cancel: &Cancel,
-        progress: &mut (dyn FnMut(Progress) + Send),
-    ) -> Result<(), GranuleError> {
-        self.fill_bands(0..self.bands.len(), cancel, progress)
-    }
-
-    /// The same for some bands only.
-    pub fn fill_bands(
-        &self,
-        bands: impl IntoIterator<Item = usize>,
-        cancel: &Cancel,
-        progress: &mut (dyn FnMut(Progress) + Send),
-    ) -> Result<(), GranuleError> {
-        let slabs = |band| (0..self.cube.slabs(band)).map(move |slab| (band, slab));
-        let slabs: Vec<(usize, usize)> = bands.into_iter().flat_map(slabs).collect();
-        self.check_room(&slabs)?;
-        let fill = |(band, slab)| match cancel.is_cancelled() {
-            true => Err(GranuleError::Cancelled),
-            false => self.fill_slab_until(band, slab, Some(cancel)),
-        };
-        let _at_work = self.reader.at_work();
-        let mut tell = |done| progress(Progress { done, total: slabs.len() });
-        side_by_side(&slabs, fill, &mut tell)
-    }
-
-    /// An error if the cube would take more memory than it may with these slabs in it.
-    fn check_room(&self, slabs: &[(usize, usize)]) -> Result<(), GranuleError> {
-        let bytes = |band: usize, slab| {
-            let size = self.band_variable(band).kind.size().unwrap_or(8);
-            let values = self
-                .cube
-                .footprints_of(band, slab)
-                .len()
-                .saturating_mul(self.bands[band].channels());
-            values.saturating_mul(size) as u64
-        };
-        let new = slabs.iter().filter(|(band, slab)| !self.cube.has_slab(*band, *slab));
-        let needed = new.map(|(band, slab)| bytes(*band, *slab)).fold(0, u64::saturating_add);
-        let all = self.cube.held_bytes().saturating_add(needed);
-        match needed == 0 || all <= self.budget {
-            true => Ok(()),
-            false => Err(GranuleError::TooLarge {
-                path: self.path().to_owned(),
-                bytes: all,
-                budget: self.budget,
-                dimension: self.footprints.names().first().cloned().unwrap_or_default(),
-            }),
-        }
-    }
-
-    /// Reads one slab of a band, if it is not here yet.
-    pub fn fill_slab(&self, band: usize, slab: usize) -> Result<(), GranuleError> {
-        self.fill_slab_until(band, slab, None)
-    }
-
-    fn fill_slab_until(
-        &self,
-        band: usize,
-        slab: usize,
-        cancel: Option<&Cancel>,
-    ) -> Result<(), GranuleError> {
-        if self.cube.has_slab(band, slab) {
-            return Ok(());
-        }
-        let layout = &self.sources[band].layout;
-        let (start, count) = layout.rows(self.cube.rows_of(band, slab));
-        let demand = Demand { urgent: false, cancel };
-        let variable = self.band_variable(band);
-        let samples = self.reader.read_on_demand(variable, &start, &count, demand)?;
-        self.cube.set_slab(band, slab, layout.footprint_major(&count, samples));
-        Ok(())
-    }
-
-    /// One footprint's values over all channels, in mW m-2 sr-1 (cm-1)-1 or K by the band's quantity,
-    /// missing as NaN: out of the cube, or straight from the file before all background reading.
-    pub fn read_spectrum(&self, band: usize, footprint: usize) -> Result<Vec<f64>, GranuleError> {
-        let mut values = Vec::new();
-        if self.cube.values(band, footprint, &mut values) == Presence::Here {
-            return Ok(values);
-        }
-        let position = self.footprints.position(footprint);
-        let (start, count) = self.sources[band].layout.spectrum(&position);
-        let samples = self.reader.read(self.band_variable(band), &start, &count)?;
-        Ok(self.cube.decode_spectrum(band, &samples))
-    }
-
     /// The noise of a footprint's channels in a band, as a standard deviation in mW m-2 sr-1 (cm-1)-1
     /// or K by the band's quantity, missing as NaN; nothing where the file does not give it. It is that
     /// of the spectra in the file, before anything is done on request.
@@ -320,17 +210,4 @@ impl Granule {
     pub fn channels_between(&self, low: f64, high: f64) -> Vec<Channel> {
         channels_between(&self.bands, low, high)
     }
-
-    /// Bytes that the cube takes once all is read.
-    pub fn cube_bytes(&self) -> usize {
-        let size = |band| self.band_variable(band).kind.size().unwrap_or(8);
-        (0..self.bands.len()).map(|band| self.cube.bytes(band, size(band))).sum()
-    }
-}
-
-/// What the values of a file may take: most of what is free where nothing is said. The rest is for the
-/// layers made of them.
-pub(super) fn memory_budget(limits: &ReadLimits) -> u64 {
-    let most = |free: u64| free / 4 * 3;
-    limits.values.or_else(|| free_memory().map(most)).unwrap_or(u64::MAX)
 }

@@ -24,11 +24,14 @@ mod identity;
 mod layout;
 mod layout_file;
 mod layout_text;
+mod memory_plan;
 mod named_variable;
 mod noise;
 mod open;
 mod opening;
+mod passing;
 mod problem;
+mod reading;
 mod side_by_side;
 mod slabs;
 mod spectral_axis;
@@ -43,18 +46,21 @@ pub use error::GranuleError;
 pub use footprint_variables::{FlagMeaning, FootprintVariable, VariableRole};
 pub use footprints::FootprintGrid;
 pub use geolocation::{Geolocation, GeolocationSource};
-pub use granule_file::{Granule, Progress};
+pub use granule_file::Granule;
 pub use identity::Identity;
 pub use layout_file::{ApodiseBy, BandEntry, LayoutFile};
 pub use layout_text::layout_text;
 pub use noise::Noise;
 pub use opening::Opening;
 pub use problem::{Problem, ProblemKind};
+pub use reading::Progress;
 pub use time::{TimeScale, TimeUnit};
 
 #[cfg(test)]
 mod found_tests;
 #[cfg(test)]
 mod layout_tests;
+#[cfg(test)]
+mod memory_tests;
 #[cfg(test)]
 mod tests;

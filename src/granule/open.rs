@@ -14,8 +14,10 @@ use super::footprints::FootprintGrid;
 use super::geolocation;
 use super::granule_file::Granule;
 use super::layout_file::{ApodiseBy, BandEntry, LayoutFile};
+use super::memory_plan::MemoryPlan;
 use super::named_variable::named_variable;
 use super::noise::{Noise, NoiseSearch};
+use super::passing::PassingSlabs;
 use super::problem::Problem;
 use super::slabs::rows_per_slab;
 use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadFault, Variable};
@@ -23,9 +25,13 @@ use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadFault, Variable}
 /// More footprints than any granule has; the screen and the layers hold numbers for each.
 const MOST_FOOTPRINTS: usize = 20_000_000;
 
-/// Understands an open file, whose values may take `budget` bytes of memory, with what the layout
-/// file says of it.
-pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Granule, GranuleError> {
+/// Understands an open file, whose values may take as much memory as is planned, with what the
+/// layout file says of it.
+pub fn open(
+    reader: FileReader,
+    memory: &MemoryPlan,
+    layout: &LayoutFile,
+) -> Result<Granule, GranuleError> {
     let index = reader.index();
     let mut problems: Vec<Problem> = index
         .unreadable
@@ -55,7 +61,7 @@ pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Gran
             let fault = ReadFault::MissingFilter { what, filter: filter.clone() };
             return Err(ReadError::new(reader.path(), fault).into());
         }
-        let rows = rows_per_slab(index, variable, &source.layout);
+        let rows = rows_per_slab(index, variable, &source.layout, memory.slab);
         let search = NoiseSearch {
             index,
             band: source.variable,
@@ -70,7 +76,8 @@ pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Gran
             Some(ApodiseBy::Hamming) => apodise::hamming(&mut band, &mut problems),
             None => None,
         };
-        storage.push(BandStorage { decoder, rows_per_slab: rows, apodise });
+        let value_size = variable.kind.size().unwrap_or(8);
+        storage.push(BandStorage { decoder, rows_per_slab: rows, value_size, apodise });
         if band.name.is_empty() {
             band.name = name;
         }
@@ -88,7 +95,7 @@ pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Gran
         quality.as_deref(),
         is_geolocation,
     );
-    let cube = Arc::new(Cube::new(&grid, &bands, storage));
+    let cube = Arc::new(Cube::new(&grid, &bands, storage, memory));
     Ok(Granule {
         footprints: grid,
         dimensions,
@@ -98,7 +105,7 @@ pub fn open(reader: FileReader, budget: u64, layout: &LayoutFile) -> Result<Gran
         variables: footprint_variables,
         problems,
         cube,
-        budget,
+        passing: PassingSlabs::new(memory.passing()),
         identity: OnceLock::new(),
         reader,
     })

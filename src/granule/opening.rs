@@ -3,8 +3,9 @@
 use std::path::Path;
 
 use super::error::GranuleError;
-use super::granule_file::{Granule, memory_budget};
+use super::granule_file::Granule;
 use super::layout_file::LayoutFile;
+use super::memory_plan::MemoryPlan;
 use crate::netcdf_files::{FileReader, ReadLimits, ReaderProgram};
 
 /// How files are opened; the same for all files of a run.
@@ -30,6 +31,6 @@ impl Opening {
     /// The file cannot be read, holds no spectra that can be used, or does not fit the layout file.
     pub fn open(&self, path: &Path) -> Result<Granule, GranuleError> {
         let reader = FileReader::open(&self.program, path, &self.limits)?;
-        super::open::open(reader, memory_budget(&self.limits), &self.layout)
+        super::open::open(reader, &MemoryPlan::of(&self.limits), &self.layout)
     }
 }

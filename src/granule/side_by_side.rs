@@ -52,7 +52,7 @@ pub fn side_by_side<Thing: Copy + Send + Sync, Fault: Send>(
 }
 
 /// As many threads as the common pool has; none inside of a pool, or where none can be started.
-fn own_threads() -> Option<rayon::ThreadPool> {
+pub fn own_threads() -> Option<rayon::ThreadPool> {
     if rayon::current_thread_index().is_some() {
         return None;
     }

@@ -11,8 +11,10 @@ const BYTES_PER_SLAB: usize = 1 << 20;
 /// reader. Chunks are then cut, and inflated once for each part.
 const MOST_BYTES_PER_SLAB: usize = 64 << 20;
 
-/// The rows of a slab: whole chunks, so that none is inflated twice, unless they are huge.
-pub fn rows_per_slab(index: &FileIndex, variable: &Variable, layout: &Layout) -> usize {
+/// The rows of a slab: whole chunks, so that none is inflated twice, unless that is more than `most`
+/// bytes.
+pub fn rows_per_slab(index: &FileIndex, variable: &Variable, layout: &Layout, most: u64) -> usize {
+    let most = usize::try_from(most).unwrap_or(usize::MAX).min(MOST_BYTES_PER_SLAB);
     let lengths = index.lengths(variable);
     let Some(axis) = layout.axis_of(Role::Footprint(0)) else { return 1 };
     let rows = lengths[axis].max(1);
@@ -20,7 +22,7 @@ pub fn rows_per_slab(index: &FileIndex, variable: &Variable, layout: &Layout) ->
     let bytes_per_row = (values / rows).saturating_mul(variable.kind.size().unwrap_or(8)).max(1);
     let rows_of = |bytes: usize| (bytes / bytes_per_row).clamp(1, rows);
     let chunk = variable.storage.chunks.as_ref().map_or(1, |chunks| chunks[axis]).clamp(1, rows);
-    ((rows_of(BYTES_PER_SLAB) / chunk).max(1) * chunk).min(rows_of(MOST_BYTES_PER_SLAB))
+    ((rows_of(BYTES_PER_SLAB) / chunk).max(1) * chunk).min(rows_of(most))
 }
 
 #[cfg(test)]
@@ -30,6 +32,10 @@ mod tests {
 
     /// Rows of a slab of float values with the given lengths (rows, channels) and chunk rows.
     fn rows(lengths: [usize; 2], chunk_rows: Option<usize>) -> usize {
+        rows_within(u64::MAX, lengths, chunk_rows)
+    }
+
+    fn rows_within(most: u64, lengths: [usize; 2], chunk_rows: Option<usize>) -> usize {
         let dimension = |length| Dimension { name: "d".into(), group: 0, length, unlimited: false };
         let index = FileIndex {
             version: 1,
@@ -50,7 +56,7 @@ mod tests {
             storage: Storage { chunks, ..Storage::default() },
         };
         let layout = Layout::new(vec![Role::Footprint(0), Role::Spectral], lengths.to_vec());
-        rows_per_slab(&index, &variable, &layout)
+        rows_per_slab(&index, &variable, &layout, most)
     }
 
     #[test]
@@ -71,5 +77,7 @@ mod tests {
     fn huge_chunks_are_cut() {
         // Chunks over all rows, as of files with a map for each channel: 3.3 GB at once.
         assert_eq!(rows([100_000, 8192], Some(100_000)), 2048);
+        assert_eq!(rows_within(50_000, [100, 1024], Some(100)), 12);
+        assert_eq!(rows_within(0, [100, 1024], Some(100)), 1, "a row is the least");
     }
 }

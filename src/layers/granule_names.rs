@@ -9,17 +9,20 @@ use super::names::{NameError, Names, Values};
 use super::neighbours::Neighbours;
 use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, Judgement};
 use super::unit::LayerUnit;
-use crate::granule::{Channel, Cube, Granule, Quantity};
+use super::whole_granule::WholeGranule;
+use crate::granule::{Channel, Cube, Granule, GranuleError, Quantity};
 use crate::spectral::planck;
+use crate::system::Cancel;
 
 /// The names of a granule: its channels, its geolocation, the indices of its footprint dimensions,
 /// its variables, and definitions that are lent to it.
 ///
 /// Works while the cube is still being read; what is not here yet is missing, and the layers say
-/// so.
+/// so, unless [`Self::lend_all`] lends the names.
 pub struct GranuleNames<'g> {
     granule: &'g Granule,
     cube: &'g Cube,
+    whole: Option<WholeGranule<'g>>,
     definitions: Option<&'g BTreeMap<String, Expression>>,
     kept: Option<&'g Kept>,
     own: Kept,
@@ -28,7 +31,7 @@ pub struct GranuleNames<'g> {
 impl<'g> GranuleNames<'g> {
     /// The names of a granule over its cube.
     pub fn new(granule: &'g Granule, cube: &'g Cube) -> Self {
-        Self { granule, cube, definitions: None, kept: None, own: Kept::default() }
+        Self { granule, cube, whole: None, definitions: None, kept: None, own: Kept::default() }
     }
 
     /// With names that stand for expressions.
@@ -45,6 +48,23 @@ impl<'g> GranuleNames<'g> {
 
     fn kept(&self) -> &Kept {
         self.kept.unwrap_or(&self.own)
+    }
+
+    /// Lends the names to `work` while what is not in the cube is read as it is asked for, and given
+    /// up again: takes little memory however large the granule is.
+    ///
+    /// # Errors
+    /// Something could not be read, or `cancel` was asked for; what `work` made of it is dropped.
+    pub fn lend_all<Done: Send>(
+        mut self,
+        cancel: &'g Cancel,
+        work: impl FnOnce(&dyn Names) -> Done + Send,
+    ) -> Result<Done, GranuleError> {
+        self.whole = Some(WholeGranule::new(cancel));
+        let granule = self.granule;
+        let done = granule.at_work(|| work(&self));
+        self.whole.map_or(Ok(()), WholeGranule::fault)?;
+        Ok(done)
     }
 
     /// The index of each footprint along a dimension.
@@ -83,7 +103,15 @@ impl<'g> GranuleNames<'g> {
         for of_band in channels.chunk_by(|one, next| one.band == next.band) {
             let indices: Vec<usize> = of_band.iter().map(|channel| channel.index).collect();
             let (part, rest) = out.split_at_mut(of_band.len() * footprints.len());
-            self.cube.channels_over(of_band[0].band, &indices, footprints.clone(), part);
+            let band = of_band[0].band;
+            match &self.whole {
+                None => {
+                    self.cube.channels_over(band, &indices, footprints.clone(), part);
+                }
+                Some(whole) => {
+                    whole.channels_over(self.granule, band, &indices, footprints.clone(), part);
+                }
+            }
             out = rest;
         }
     }
@@ -124,8 +152,12 @@ impl Names for GranuleNames<'_> {
         self.values(channels, &footprints, out);
     }
 
+    fn footprints_at_once(&self) -> Option<usize> {
+        self.whole.as_ref().map(|_| self.granule.footprints_at_once())
+    }
+
     fn is_complete(&self, channel: &Channel) -> bool {
-        self.cube.is_complete(channel.band)
+        self.whole.is_some() || self.cube.is_complete(channel.band)
     }
 
     fn named(&self, name: &str) -> Result<Values, NameError> {

@@ -13,6 +13,7 @@ mod names;
 mod neighbours;
 mod syntax;
 mod unit;
+mod whole_granule;
 
 pub use evaluation::{Layer, LayerError, channels_needed, evaluate, evaluate_all};
 pub use first_look::{FIRST_LOOK, suggestions};

@@ -100,6 +100,12 @@ pub trait Names: Sync {
     /// Brightness temperatures, K, in the same order; asked only of channels that store them.
     fn temperatures(&self, channels: &[Channel], footprints: Range<usize>, out: &mut [f64]);
 
+    /// Where numbers are read as they are asked for: how many footprints, from the first one on, are
+    /// best asked for together, by several threads side by side. Nothing where they lie in memory.
+    fn footprints_at_once(&self) -> Option<usize> {
+        None
+    }
+
     /// Whether all of the channel's numbers have been read; those that have not are NaN.
     fn is_complete(&self, channel: &Channel) -> bool;
 

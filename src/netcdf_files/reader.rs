@@ -94,7 +94,7 @@ impl FileReader {
         start: &[usize],
         count: &[usize],
     ) -> Result<Samples, ReadError> {
-        self.read_on_demand(variable, start, count, Demand { urgent: true, cancel: None })
+        self.read_on_demand(variable, start, count, Demand { urgent: true, ..Demand::default() })
     }
 
     /// Says that many blocks will be read one after another: what decoding them takes of memory is

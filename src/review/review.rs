@@ -7,7 +7,7 @@ use crate::export::granule_identity;
 use crate::flags::GranuleIdentity;
 use crate::granule::{Cube, Granule, GranuleError, Opening};
 use crate::layers::{Expression, GranuleNames, Kept, Layer, Mistake, evaluate_all};
-use crate::screening::{Rulebook, Screened, channels_of, screen};
+use crate::screening::{Rulebook, Screened, screen};
 use crate::system::Cancel;
 
 /// A granule on the table. Many threads may look at it at once.
@@ -48,32 +48,31 @@ impl Review {
         GranuleNames::new(&self.granule, &self.cube).keeping(&self.kept)
     }
 
+    /// Runs the tests of a rulebook; what they need and has not been read yet is read meanwhile.
+    ///
+    /// # Errors
+    /// The file can't be read, or `cancel` was asked for.
+    pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
+        self.names().lend_all(cancel, |names| screen(rulebook, names))
+    }
+
     /// Runs the tests of a rulebook over what has been read so far.
-    pub fn screen(&self, rulebook: &Rulebook) -> Screened {
+    pub fn screen_so_far(&self, rulebook: &Rulebook) -> Screened {
         screen(rulebook, &self.names())
     }
 
-    /// Reads the bands that a rulebook needs, and no others.
+    /// Evaluates an expression over what has been read so far; over all of a granule that does not
+    /// fit into memory.
     ///
     /// # Errors
-    /// The file can't be read.
-    pub fn read_for(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<(), GranuleError> {
-        let channels = channels_of(rulebook, &self.names());
-        let mut bands: Vec<usize> = channels.iter().map(|channel| channel.band).collect();
-        bands.dedup();
-        self.granule.fill_bands(bands, cancel, &mut |_| {})
-    }
-
-    /// Evaluates an expression over what has been read so far.
-    ///
-    /// # Errors
-    /// In one line: the text is no expression, or the granule lacks something that it asks for.
-    pub fn layer(&self, text: &str) -> Result<Layer, String> {
-        self.layers(&[text]).swap_remove(0)
+    /// In one line: the text is no expression, the granule lacks something that it asks for, the file
+    /// can't be read, or `cancel` was asked for.
+    pub fn layer(&self, text: &str, cancel: &Cancel) -> Result<Layer, String> {
+        self.layers(&[text], cancel).swap_remove(0)
     }
 
     /// The same for several expressions, which share what they have in common.
-    pub fn layers(&self, texts: &[&str]) -> Vec<Result<Layer, String>> {
+    pub fn layers(&self, texts: &[&str], cancel: &Cancel) -> Vec<Result<Layer, String>> {
         let parsed: Vec<Result<Expression, String>> = texts
             .iter()
             .map(|text| {
@@ -82,7 +81,14 @@ impl Review {
             })
             .collect();
         let good: Vec<&Expression> = parsed.iter().filter_map(|one| one.as_ref().ok()).collect();
-        let layers = evaluate_all(&good, &self.names()).into_iter();
+        let layers = match self.cube.is_full() {
+            false => evaluate_all(&good, &self.names()),
+            true => match self.names().lend_all(cancel, |names| evaluate_all(&good, names)) {
+                Ok(layers) => layers,
+                Err(error) => return texts.iter().map(|_| Err(error.to_string())).collect(),
+            },
+        };
+        let layers = layers.into_iter();
         let mut layers =
             layers.map(|one| one.map_err(|error| in_one_line(error.text(), error.mistake())));
         let missing = || Err("no layer came back".to_owned());

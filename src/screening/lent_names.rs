@@ -39,6 +39,10 @@ impl Names for LentNames<'_> {
         self.names.temperatures(channels, footprints, out);
     }
 
+    fn footprints_at_once(&self) -> Option<usize> {
+        self.names.footprints_at_once()
+    }
+
     fn is_complete(&self, channel: &Channel) -> bool {
         self.names.is_complete(channel)
     }

@@ -34,6 +34,6 @@ pub use evidence::{Evidence, FamilyVoice, FlagEvidence, TestEvidence};
 pub use mistakes::{RuleMistake, RulebookError};
 pub use rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
 pub use run_tests::TestResult;
-pub use screened::{FlagResult, Screened, Summary, channels_of, screen};
+pub use screened::{FlagResult, Screened, Summary, screen};
 pub use threshold::{Sense, Table, Threshold};
 pub use verdict::Verdict;

@@ -5,18 +5,9 @@ use std::collections::BTreeMap;
 use rayon::prelude::*;
 
 use super::combine::{Conclusion, Voice, conclude, family_voice};
-use super::lent_names::LentNames;
 use super::rulebook::Rulebook;
-use super::run_tests::{TestResult, expressions, run};
-use crate::granule::Channel;
-use crate::layers::{Names, channels_needed};
-
-/// The channels that must have been read before a granule can be screened, each once and in the
-/// file's order.
-pub fn channels_of(rulebook: &Rulebook, names: &dyn Names) -> Vec<Channel> {
-    let names = LentNames { names, definitions: &rulebook.by_name };
-    channels_needed(&expressions(rulebook), &names)
-}
+use super::run_tests::{TestResult, run};
+use crate::layers::Names;
 
 /// What the tests say about a granule.
 #[derive(Debug, Clone)]

@@ -35,6 +35,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Quality { request, found } => quality(app, request, found),
         Answer::Screened { request, found } => screening::take(app, request, found),
         Answer::Spectrum { request, found } => spectrum(app, request, found),
+        Answer::Pinned { request, found } => pinned(app, request, found),
         Answer::Exported { request, found } => exported(app, request, found),
     }
 }
@@ -118,7 +119,7 @@ fn filled(app: &mut App, request: u64, found: Result<(), String>) -> Vec<Job> {
     let mut jobs = looking::refresh_layer(app);
     jobs.extend(looking::refresh_indices(app));
     jobs.extend(screening::start(app));
-    looking::fill_pins(app);
+    jobs.extend(looking::fill_pins(app));
     jobs
 }
 
@@ -132,7 +133,7 @@ fn more_is_there(app: &mut App) -> Vec<Job> {
     if awaited.indices == 0 {
         jobs.extend(looking::refresh_indices(app));
     }
-    looking::fill_pins(app);
+    jobs.extend(looking::fill_pins(app));
     jobs
 }
 
@@ -197,8 +198,8 @@ fn go_to_place(app: &mut App, place: &Place) -> Vec<Job> {
     if app.panes == Arrangement::default() {
         app.panes.restore(&place.panes, place.zoomed);
     }
-    looking::fill_pins(app);
-    let mut jobs = looking::spectrum(app);
+    let mut jobs = looking::fill_pins(app);
+    jobs.extend(looking::spectrum(app));
     if let Some(layer) = layer {
         jobs.extend(looking::show_layer(app, &layer));
     }
@@ -261,6 +262,20 @@ fn spectrum(app: &mut App, request: u64, found: Result<Spectrum, String>) -> Vec
     match found {
         Ok(spectrum) => bench.spectrum = Some(spectrum),
         Err(why) => bench.spectrum_problem = Some(why),
+    }
+    Vec::new()
+}
+
+fn pinned(app: &mut App, request: u64, found: Vec<Spectrum>) -> Vec<Job> {
+    let Some(bench) = awaited(app, |bench| bench.awaited.pins == request) else {
+        return Vec::new();
+    };
+    bench.awaited.pins = 0;
+    for spectrum in found {
+        let pin = bench.pins.iter_mut().find(|pin| pin.footprint == spectrum.footprint);
+        if let Some(pin) = pin {
+            pin.spectrum = Some(spectrum);
+        }
     }
     Vec::new()
 }

@@ -7,7 +7,9 @@ use crate::flags::FootprintSet;
 use crate::granule::Channel;
 use crate::review::{Review, Spectrum};
 
-pub use super::bench_parts::{Awaited, Filling, Index, Pinned, Quality, RecordState, Signs, Tests};
+pub use super::bench_parts::{
+    Awaited, Filling, Index, Overtaken, Pinned, Quality, RecordState, Signs, Tests, overtake,
+};
 use super::channels::Channels;
 use super::overlay::Selection;
 use super::panes::Arrangement;
@@ -81,6 +83,8 @@ pub struct Bench {
     pub filling: Filling,
     /// The requests whose answers are waited for.
     pub awaited: Awaited,
+    /// What ends jobs whose answers are no longer waited for.
+    pub overtaken: Overtaken,
     /// An export that waits for the last decisions to be on the disk: into which folder.
     pub export_waits: Option<PathBuf>,
     /// A key wanted to decide something while the ledgers were still being read.
@@ -136,6 +140,7 @@ impl Bench {
             strip_along: 0,
             filling: Filling::default(),
             awaited: Awaited::default(),
+            overtaken: Overtaken::default(),
             export_waits: None,
             asked_early: false,
             touched: false,

@@ -128,6 +128,31 @@ pub struct Tests {
     pub problem: Option<String>,
 }
 
+/// Ends the jobs whose answers have been overtaken by a newer request: where the granule does not fit
+/// into memory each of them reads the whole file.
+#[derive(Default)]
+pub struct Overtaken {
+    /// The layer.
+    pub layer: Cancel,
+    /// The indices.
+    pub indices: Cancel,
+}
+
+impl Overtaken {
+    /// Ends all jobs.
+    pub fn end_all(&self) {
+        self.layer.cancel();
+        self.indices.cancel();
+    }
+}
+
+/// Ends the job before, and lends what ends the next one.
+pub fn overtake(job: &mut Cancel) -> Cancel {
+    job.cancel();
+    *job = Cancel::new();
+    job.clone()
+}
+
 /// The numbers of requests whose answers are waited for; 0 is none.
 #[derive(Debug, Clone, Copy, Default)]
 pub struct Awaited {
@@ -139,6 +164,8 @@ pub struct Awaited {
     pub layer: u64,
     /// Reading the spectrum under the cursor.
     pub spectrum: u64,
+    /// Reading the spectra of pins.
+    pub pins: u64,
     /// Evaluating the indices.
     pub indices: u64,
     /// Reading what the producer says about quality.

@@ -61,6 +61,8 @@ pub enum Job {
         review: Arc<Review>,
         /// The expression.
         text: String,
+        /// Ends it early.
+        cancel: Cancel,
     },
     /// Evaluate the indices of the Evidence.
     Indices {
@@ -70,6 +72,8 @@ pub enum Job {
         review: Arc<Review>,
         /// The expressions.
         texts: Vec<String>,
+        /// Ends it early.
+        cancel: Cancel,
     },
     /// Read what the producer says about quality.
     Quality {
@@ -95,6 +99,15 @@ pub enum Job {
         review: Arc<Review>,
         /// The footprint.
         footprint: usize,
+    },
+    /// Read the spectra of pins that are not in memory.
+    Pinned {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The footprints.
+        footprints: Vec<usize>,
     },
     /// Keep a place.
     Keep {
@@ -194,6 +207,13 @@ pub enum Answer {
         request: u64,
         /// The spectrum.
         found: Result<Spectrum, String>,
+    },
+    /// Spectra of pins were read; those that cannot be are left out.
+    Pinned {
+        /// The request.
+        request: u64,
+        /// The spectra.
+        found: Vec<Spectrum>,
     },
     /// The flag mask was written.
     Exported {

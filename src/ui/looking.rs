@@ -3,7 +3,7 @@
 use std::sync::Arc;
 
 use super::app::App;
-use super::bench::{Bench, MOST_PINS};
+use super::bench::{Bench, MOST_PINS, overtake};
 use super::jobs::Job;
 use super::keys::Action;
 use super::panes::Pane;
@@ -67,7 +67,7 @@ pub fn refresh_layer(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     bench.awaited.layer = request;
     let (review, text) = (Arc::clone(&bench.review), bench.wanted.clone());
-    vec![Job::Layer { request, review, text }]
+    vec![Job::Layer { request, review, text, cancel: overtake(&mut bench.overtaken.layer) }]
 }
 
 /// Evaluates the indices of the Evidence, with what is there of the spectra.
@@ -76,7 +76,8 @@ pub fn refresh_indices(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     bench.awaited.indices = request;
     let texts = bench.indices.iter().map(|index| index.text.clone()).collect();
-    vec![Job::Indices { request, review: Arc::clone(&bench.review), texts }]
+    let cancel = overtake(&mut bench.overtaken.indices);
+    vec![Job::Indices { request, review: Arc::clone(&bench.review), texts, cancel }]
 }
 
 /// Sets the colours' range.
@@ -191,17 +192,25 @@ pub fn pins(app: &mut App, action: Action) -> Vec<Job> {
         let key = app.keymap.hint(Action::Unpin);
         app.warn(format!("{MOST_PINS} are pinned already; {key} takes all pins off"));
     }
-    fill_pins(app);
-    Vec::new()
+    fill_pins(app)
 }
 
-/// Finds the spectra of pinned footprints that have none yet, where they have been read.
-pub fn fill_pins(app: &mut App) {
-    let Some(bench) = app.bench_mut() else { return };
+/// Finds the spectra of pinned footprints that have none yet: in memory, or by a job where they will
+/// never be there.
+pub fn fill_pins(app: &mut App) -> Vec<Job> {
+    let request = app.request();
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
     let review = &bench.review;
     for pin in bench.pins.iter_mut().filter(|pin| pin.spectrum.is_none()) {
         pin.spectrum = review.spectrum_in_memory(pin.footprint);
     }
+    let without = bench.pins.iter().filter(|pin| pin.spectrum.is_none());
+    let footprints: Vec<usize> = without.map(|pin| pin.footprint).collect();
+    if footprints.is_empty() || !review.cube().is_full() {
+        return Vec::new();
+    }
+    bench.awaited.pins = request;
+    vec![Job::Pinned { request, review: Arc::clone(review), footprints }]
 }
 
 /// Finds the spectrum under the cursor: in memory, or by a job that reads it before all others.

@@ -45,7 +45,9 @@ fn lane_of(job: &Job) -> Lane {
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {
             Lane::Alone
         }
-        Job::Reread { .. } | Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
+        Job::Pinned { .. } | Job::Reread { .. } | Job::Keep { .. } | Job::Export { .. } => {
+            Lane::Alone
+        }
     }
 }
 

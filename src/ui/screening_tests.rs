@@ -70,12 +70,12 @@ pub fn screen(place: &Place, name: &str) {
     let opening = Opening::new(ReaderProgram::in_process());
     let review = Review::open(&opening, &place.path(name)).unwrap();
     let rulebook = rulebook_of(&campaign).unwrap();
-    review.read_for(&rulebook, &crate::system::Cancel::new()).unwrap();
+    let screened = review.screen(&rulebook, &crate::system::Cancel::new()).unwrap();
     let author = Author { person: "night".into(), host: "desk".into(), process: 8 };
     let now = "2026-03-01T03:00:00Z".parse().unwrap();
     let identity = review.identify().unwrap();
     let mut record = Record::open(&campaign, identity, &author, "0.0.0", now).unwrap();
-    record.tests_decide(&review.screen(&rulebook), now).unwrap();
+    record.tests_decide(&screened, now).unwrap();
     record.close(std::time::Duration::from_secs(60)).unwrap();
 }
 

@@ -156,6 +156,7 @@ fn put_away(app: &mut App) {
     let Table::Bench(bench) = std::mem::replace(&mut app.table, Table::Empty) else { return };
     bench.filling.cancel.cancel();
     bench.tests.cancel.cancel();
+    bench.overtaken.end_all();
     if let RecordState::Open(record) = bench.record
         && record.pending() > 0
     {

@@ -41,12 +41,12 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = read_ledgers(&outside.campaign, identity);
             send(Answer::Reread { request: *request, found });
         }
-        Job::Layer { request, review, text } => {
-            send(Answer::Layer { request: *request, found: review.layer(text) });
+        Job::Layer { request, review, text, cancel } => {
+            send(Answer::Layer { request: *request, found: review.layer(text, cancel) });
         }
-        Job::Indices { request, review, texts } => {
+        Job::Indices { request, review, texts, cancel } => {
             let texts: Vec<&str> = texts.iter().map(String::as_str).collect();
-            send(Answer::Indices { request: *request, found: review.layers(&texts) });
+            send(Answer::Indices { request: *request, found: review.layers(&texts, cancel) });
         }
         Job::Quality { request, review } => {
             send(Answer::Quality { request: *request, found: quality(review) });
@@ -60,6 +60,11 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         Job::Spectrum { request, review, footprint } => {
             let found = review.read_spectrum(*footprint).map_err(in_words);
             send(Answer::Spectrum { request: *request, found });
+        }
+        Job::Pinned { request, review, footprints } => {
+            let read = |footprint: &usize| review.read_spectrum(*footprint).ok();
+            let found = footprints.iter().filter_map(read).collect();
+            send(Answer::Pinned { request: *request, found });
         }
         Job::Keep { identity, place } => {
             place::keep(&outside.campaign, identity, &outside.author.person, place);
@@ -86,6 +91,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Quality { request, .. } => Answer::Quality { request: *request, found: Vec::new() },
         Job::Screen { request, .. } => Answer::Screened { request: *request, found: Err(why()) },
         Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
+        Job::Pinned { request, .. } => Answer::Pinned { request: *request, found: Vec::new() },
         Job::Reread { .. } | Job::Keep { .. } => return None,
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
@@ -125,12 +131,12 @@ fn record(
 /// Whoever cancelled it gets no answer.
 fn screen(review: &Review, cancel: &Cancel, outside: &Outside) -> Result<Option<Screened>, String> {
     let rulebook = rulebook_of(&outside.campaign).map_err(|error| error.to_string())?;
-    match review.read_for(&rulebook, cancel) {
+    let screened = match review.screen(&rulebook, cancel) {
+        Ok(screened) => screened,
         Err(GranuleError::Cancelled) => return Ok(None),
         // What can't be read is missing, and the tests say so.
-        Ok(()) | Err(_) => {}
-    }
-    let screened = review.screen(&rulebook);
+        Err(_) => review.screen_so_far(&rulebook),
+    };
     Ok((!cancel.is_cancelled()).then_some(screened))
 }
 

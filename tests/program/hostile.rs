@@ -158,23 +158,6 @@ fn a_file_larger_than_memory_on_paper_only_is_refused() {
     assert!(refused(&path).contains("footprints"));
 }
 
-#[test]
-fn values_that_take_more_memory_than_they_may_are_refused() {
-    let folder = tempfile::tempdir().unwrap();
-    let path = small_granule(folder.path());
-    let tabulated = |memory: &str| {
-        let arguments = ["tabulate", "--layer", "bt(900)", "--memory", memory];
-        let output = program(&arguments, &path).output().unwrap();
-        (output.status.code(), String::from_utf8(output.stderr).unwrap())
-    };
-    // 192 values of four bytes.
-    assert_eq!(tabulated("768").0, Some(0));
-    let (code, text) = tabulated("767");
-    assert_eq!(code, Some(4), "{text}");
-    assert!(text.contains("ncks -d line,0,999") && text.contains("--memory"), "{text}");
-    assert_eq!(tabulated("4 parsecs").0, Some(2));
-}
-
 /// Whether the kernel can shut a process into one file.
 fn kernel_has_landlock() -> bool {
     use landlock::{AccessFs, CompatLevel, Compatible, Ruleset, RulesetAttr};

@@ -8,6 +8,7 @@ mod hostile;
 mod layers;
 mod layout;
 mod manual;
+mod memory;
 mod plain_granule;
 mod planck;
 mod samples;

@@ -40,17 +40,31 @@ pub fn gather(leaves: &[Leaf], names: &dyn Names) -> Vec<Column> {
     let wanted = Wanted::by(leaves, names);
     let footprints = names.footprints();
     let block = (BLOCK_NUMBERS / wanted.len().max(1)).clamp(64, 4096);
-    let starts: Vec<usize> = (0..footprints).step_by(block).collect();
-    let gathered =
-        |start: usize| wanted.block(leaves, names, start..(start + block).min(footprints));
-    let blocks: Vec<Vec<Column>> = if wanted.len() * footprints < PARALLEL_FROM {
-        starts.into_iter().map(gathered).collect()
-    } else {
-        starts.into_par_iter().map(gathered).collect()
+    // What is read together is gathered by one thread, block by block.
+    let piece = names.footprints_at_once().filter(|_| wanted.len() > 0);
+    let gathered = |piece: Range<usize>| {
+        let blocks = pieces(piece, block).into_iter();
+        join(leaves.len(), blocks.map(|block| wanted.block(leaves, names, block)))
     };
-    let mut columns: Vec<Column> = vec![Column::default(); leaves.len()];
-    for block in &blocks {
-        for (column, part) in columns.iter_mut().zip(block) {
+    let pieces = pieces(0..footprints, piece.unwrap_or(block));
+    if piece.is_none() && wanted.len() * footprints < PARALLEL_FROM {
+        return join(leaves.len(), pieces.into_iter().map(gathered));
+    }
+    let gathered: Vec<Vec<Column>> = pieces.into_par_iter().map(gathered).collect();
+    join(leaves.len(), gathered.into_iter())
+}
+
+/// A range cut into pieces of a length.
+fn pieces(whole: Range<usize>, length: usize) -> Vec<Range<usize>> {
+    let end = whole.end;
+    whole.step_by(length.max(1)).map(|start| start..(start + length).min(end)).collect()
+}
+
+/// The columns of ranges of footprints, one behind the other.
+fn join(leaves: usize, parts: impl Iterator<Item = Vec<Column>>) -> Vec<Column> {
+    let mut columns: Vec<Column> = vec![Column::default(); leaves];
+    for part in parts {
+        for (column, part) in columns.iter_mut().zip(&part) {
             column.append(part);
         }
     }

@@ -19,6 +19,9 @@ const WORTH_ASKING: usize = 256 << 10;
 pub struct Demand<'a> {
     /// A person waits for them: before all that is not urgent, and past the pool of threads.
     pub urgent: bool,
+    /// By the thread that asks and no other. One that holds a lock must ask so: while it waits for
+    /// others of its pool it may be given work that needs the same lock.
+    pub alone: bool,
     /// The wish to stop.
     pub cancel: Option<&'a Cancel>,
 }
@@ -81,7 +84,7 @@ impl FastPath {
             file,
             scratch: &self.scratch,
             cancel: demand.cancel,
-            shared: !demand.urgent,
+            shared: !(demand.urgent || demand.alone),
         };
         let samples = decoder.block(start, count);
         // Whatever came out of a file that changed meanwhile is worth nothing, good or bad.

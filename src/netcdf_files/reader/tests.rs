@@ -106,7 +106,7 @@ fn a_raised_wish_to_stop_asks_the_reader_nothing() {
     let reader = open(&path).unwrap();
     let cancel = Cancel::new();
     cancel.cancel();
-    let demand = Demand { urgent: false, cancel: Some(&cancel) };
+    let demand = Demand { cancel: Some(&cancel), ..Demand::default() };
     let variable = reader.index().variable("v").unwrap();
     let error = reader.read_on_demand(variable, &[0], &[2], demand).unwrap_err();
     assert!(matches!(error.fault, ReadFault::Cancelled { .. }), "{error}");

@@ -133,7 +133,7 @@ fn a_raised_wish_stops_the_reading() {
     write_checked(&path);
     let both = Both::open(&path);
     let cancel = Cancel::new();
-    let demand = Demand { urgent: false, cancel: Some(&cancel) };
+    let demand = Demand { cancel: Some(&cancel), ..Demand::default() };
     assert!(both.fast_read("v", &[0, 0], &LENGTHS, demand).unwrap().is_some());
     cancel.cancel();
     let error = both.fast_read("v", &[0, 0], &LENGTHS, demand).unwrap_err();

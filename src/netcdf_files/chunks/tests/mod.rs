@@ -65,7 +65,7 @@ impl Both {
     fn assert_equal(&self, path: &str, start: &[usize], count: &[usize]) {
         let expected = self.library_read(path, start, count);
         for urgent in [false, true] {
-            let demand = Demand { urgent, cancel: None };
+            let demand = Demand { urgent, ..Demand::default() };
             let samples = self.fast_read(path, start, count, demand).unwrap();
             let samples = samples.unwrap_or_else(|| panic!("{path} was left to the library"));
             assert!(bytes_of(&samples) == expected, "{path} from {start:?} of {count:?}");
