@@ -5,9 +5,11 @@
 //!
 //! **Never** draws or prints.
 
+mod cases;
 mod exporting;
 mod record;
 mod rulebook_of;
+mod rulings;
 mod tests_decide;
 #[allow(clippy::module_inception)] // The room is named after the thing.
 mod review;
@@ -15,10 +17,12 @@ mod spectrum;
 mod suggestions;
 mod verbs;
 
+pub use cases::{Case, cases};
 pub use exporting::ExportedBy;
 pub use record::Record;
 pub use review::Review;
 pub use rulebook_of::{NoRulebook, rulebook_of};
+pub use rulings::{Ruled, has_suggestion};
 pub use spectrum::{BandSpectrum, Spectrum};
 pub use tests_decide::{OnRecord, Recorded, test_acts};
 pub use verbs::Refusal;

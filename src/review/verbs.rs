@@ -21,6 +21,12 @@ pub enum Refusal {
     /// The selection is empty.
     #[error("nothing is selected")]
     NoFootprints,
+    /// The tests say nothing about any of them.
+    #[error("the tests could assess none of them: nothing is suggested")]
+    NothingSuggested,
+    /// The tests suggest no flag for any of them.
+    #[error("the tests suggest no flag here: give one instead")]
+    NothingToOverrule,
     /// None of the footprints carries the flag.
     #[error("none of them carries {0}")]
     NotFlagged(String),
@@ -148,11 +154,15 @@ impl Record {
             if rest_looked_at { self.state().rest() } else { FootprintSet::empty() };
         let counts = self.counts();
         let summary = format!(
-            "{} footprints: {} flagged, {} no flag, {} not assessed",
+            "{} footprints: {} flagged, {} no flag, {} not assessed; {} decided by persons, {} by \
+             tests alone, {} in doubt",
             counts.footprints,
             counts.flagged,
             counts.no_flag + rest_assessed.len(),
-            counts.not_assessed - rest_assessed.len().min(counts.not_assessed)
+            counts.not_assessed - rest_assessed.len().min(counts.not_assessed),
+            counts.by_person + rest_assessed.len(),
+            counts.by_test,
+            counts.in_doubt
         );
         self.decide(Act::SignOff { rest_assessed, summary }, None, now);
         Ok(())

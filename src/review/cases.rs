@@ -1,0 +1,78 @@
+//! What is left to decide, as cases: neighbouring footprints in doubt are one case, not fifty.
+
+use crate::flags::FootprintSet;
+use crate::layers::Neighbours;
+use crate::screening::Screened;
+
+/// Footprints in doubt that lie beside each other.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Case {
+    /// Which.
+    pub footprints: FootprintSet,
+    /// The doubt of the most doubtful one.
+    pub doubt: f64,
+    /// The most doubtful one, the first of equals.
+    pub worst: usize,
+}
+
+/// The cases, the most doubtful first; of equals the larger, then the earlier in the file.
+/// `settled` tells the footprints that a person has decided.
+pub fn cases(
+    screened: &Screened,
+    settled: impl Fn(usize) -> bool,
+    neighbours: &Neighbours,
+) -> Vec<Case> {
+    let count = screened.footprints();
+    let open: Vec<bool> = (0..count).map(|at| screened.is_doubtful(at) && !settled(at)).collect();
+    let mut regions = Regions::new(count);
+    for at in (0..count).filter(|at| open[*at]) {
+        let beside = neighbours.of(at).iter().map(|one| *one as usize);
+        // Nearness need not be mutual on the ground; one of the two is enough.
+        beside.filter(|other| open[*other]).for_each(|other| regions.join(at, other));
+    }
+    let mut members: Vec<Vec<usize>> = vec![Vec::new(); count];
+    (0..count).filter(|at| open[*at]).for_each(|at| members[regions.root(at)].push(at));
+    let mut cases: Vec<Case> =
+        members.into_iter().filter_map(|members| case(members, &screened.doubt)).collect();
+    cases.sort_by(|one, next| {
+        let size = |case: &Case| case.footprints.len();
+        next.doubt
+            .total_cmp(&one.doubt)
+            .then(size(next).cmp(&size(one)))
+            .then(one.worst.cmp(&next.worst))
+    });
+    cases
+}
+
+fn case(members: Vec<usize>, doubt: &[f64]) -> Option<Case> {
+    let worst = members
+        .iter()
+        .copied()
+        .reduce(|worst, next| if doubt[next] > doubt[worst] { next } else { worst })?;
+    Some(Case { footprints: members.into_iter().collect(), doubt: doubt[worst], worst })
+}
+
+/// Which footprints hang together.
+struct Regions {
+    parents: Vec<usize>,
+}
+
+impl Regions {
+    fn new(count: usize) -> Regions {
+        Regions { parents: (0..count).collect() }
+    }
+
+    fn root(&mut self, mut at: usize) -> usize {
+        while self.parents[at] != at {
+            // Each look shortens the way for the next one.
+            self.parents[at] = self.parents[self.parents[at]];
+            at = self.parents[at];
+        }
+        at
+    }
+
+    fn join(&mut self, one: usize, other: usize) {
+        let (one, other) = (self.root(one), self.root(other));
+        self.parents[one.max(other)] = one.min(other);
+    }
+}
