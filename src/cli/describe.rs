@@ -34,7 +34,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         out.write_all(layout_text(&granule).as_bytes())?;
         return Ok(Exit::Done);
     }
-    let description = Description::of(&granule);
+    let description = Description::of(&granule)?;
     if arguments.json {
         serde_json::to_writer_pretty(&mut out, &description).map_err(std::io::Error::from)?;
         writeln!(out)?;

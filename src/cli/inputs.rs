@@ -11,7 +11,7 @@ use anyhow::Context;
 
 use super::exit::UsageError;
 use super::natural_order::sort_naturally;
-use crate::granule::{ApodiseBy, LayoutFile, Opening};
+use crate::granule::{ApodiseBy, LayoutFile, LenderPattern, Opening, Within};
 use crate::netcdf_files::{ReadLimits, ReaderProgram};
 use crate::system::clean_text;
 
@@ -45,6 +45,15 @@ pub struct Reading {
     /// nothing is said. Values beyond it are read again when they are needed
     #[arg(long, value_name = "SIZE", value_parser = size)]
     pub memory: Option<u64>,
+    /// A file that lends fields: geolocation, surface temperature, calculated clear-sky spectra, any
+    /// variable; may be given several times. For many granules a folder, or a path with {stem} for
+    /// the granule's name, as in 'aux/{stem}.aux.nc'
+    #[arg(long = "with", value_name = "FILE")]
+    pub with: Vec<PathBuf>,
+    /// How near a place in such a file must be, where its dimensions are not the granule's
+    /// [default: 10km,15min]
+    #[arg(long, value_name = "TOLERANCE")]
+    pub within: Option<Within>,
 }
 
 /// Bytes, with K, M, G or T for powers of 1024 as in batch systems.
@@ -88,7 +97,26 @@ impl Reading {
         if let Some(Apodise::Hamming) = self.apodise {
             layout.apodise = Some(ApodiseBy::Hamming);
         }
-        Ok(Opening { program: reader_program()?, limits: self.limits(), layout })
+        Ok(Opening {
+            program: reader_program()?,
+            limits: self.limits(),
+            layout,
+            with: self.lenders()?,
+            within: self.within.unwrap_or_default(),
+        })
+    }
+
+    /// The files that lend; one that is for all granules must be there.
+    fn lenders(&self) -> anyhow::Result<Vec<LenderPattern>> {
+        let pattern = |path: &PathBuf| {
+            let pattern = LenderPattern::new(path.clone());
+            if pattern.is_one_file() {
+                let shown = clean_text(&path.to_string_lossy());
+                std::fs::metadata(path).with_context(|| format!("--with {shown}"))?;
+            }
+            Ok(pattern)
+        };
+        self.with.iter().map(pattern).collect()
     }
 
     /// The limits of the reader processes.

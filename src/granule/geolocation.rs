@@ -9,8 +9,9 @@ use super::layout_file::LayoutFile;
 use super::named_variable::named_variable;
 use super::problem::Problem;
 use super::time::{TimeScale, TimeUnit};
-use crate::netcdf_files::{FileIndex, FileReader, ReadError, Variable};
-use crate::units::AngleUnit;
+use super::truth::is_truth;
+use crate::netcdf_files::{FileReader, ReadError, Variable};
+use crate::units::{AngleUnit, TemperatureUnit};
 
 /// One value for each footprint, as far as the file has it. Missing values are NaN.
 #[derive(Debug, Clone, Default, PartialEq)]
@@ -31,7 +32,16 @@ pub struct Geolocation {
     pub land_fraction: Option<Vec<f64>>,
     /// Seconds since 1970-01-01T00:00:00Z, leap seconds not counted.
     pub time: Option<Vec<f64>>,
-    /// Where each field was found, in the order of the fields above.
+    /// Temperature of the surface, its skin where there is a choice, by another instrument or a
+    /// model, K.
+    pub surface_temperature: Option<Vec<f64>>,
+    /// Share under snow, 0 to 1.
+    pub snow: Option<Vec<f64>>,
+    /// Share under sea ice, 0 to 1.
+    pub sea_ice: Option<Vec<f64>>,
+    /// Share under cloud as another instrument or a model has it, 0 to 1.
+    pub cloud_amount: Option<Vec<f64>>,
+    /// Where each field was found, in the order in which they were looked for.
     pub sources: Vec<GeolocationSource>,
 }
 
@@ -47,9 +57,42 @@ impl Geolocation {
             "solar_azimuth" => &self.solar_azimuth,
             "land" => &self.land_fraction,
             "time" => &self.time,
+            "surface_temperature" => &self.surface_temperature,
+            "snow" => &self.snow,
+            "sea_ice" => &self.sea_ice,
+            "cloud_amount" => &self.cloud_amount,
             _ => return None,
         };
         values.as_deref()
+    }
+
+    /// Takes the values of a field, and where they are from.
+    pub(super) fn set(&mut self, values: Vec<f64>, source: GeolocationSource) {
+        let place = match source.field {
+            "lat" => &mut self.latitude,
+            "lon" => &mut self.longitude,
+            "view_zenith" => &mut self.view_zenith,
+            "view_azimuth" => &mut self.view_azimuth,
+            "solar_zenith" => &mut self.solar_zenith,
+            "solar_azimuth" => &mut self.solar_azimuth,
+            "land" => &mut self.land_fraction,
+            "time" => &mut self.time,
+            "surface_temperature" => &mut self.surface_temperature,
+            "snow" => &mut self.snow,
+            "sea_ice" => &mut self.sea_ice,
+            _ => &mut self.cloud_amount,
+        };
+        *place = Some(values);
+        self.sources.push(source);
+    }
+
+    /// Names the fields that nothing gave and that are missed.
+    pub(super) fn note_missing(&self, problems: &mut Vec<Problem>) {
+        for field in FIELDS.iter().filter(|field| !field.cost.is_empty()) {
+            if self.field(field.name).is_none() {
+                problems.push(Problem::missing(&format!("no `{}`", field.name), "", field.cost));
+            }
+        }
     }
 }
 
@@ -58,60 +101,76 @@ impl Geolocation {
 pub struct GeolocationSource {
     /// The field's name in layer expressions.
     pub field: &'static str,
-    /// The variable's path in the file.
+    /// The variable's path in its file; what it was worked out from, where it was.
     pub variable: String,
     /// Its unit as in the file.
     pub units: String,
+    /// Which file, if any.
+    pub origin: Origin,
     pub(super) place: usize,
 }
 
-/// Finds and reads all fields that the file has; the others become problems.
+/// Where values come from.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Origin {
+    /// From the granule's own file.
+    Granule,
+    /// From a file that lends, by its place among the granule's lenders.
+    Lent(usize),
+    /// Worked out by this program.
+    Computed,
+}
+
+/// What fields are looked for in, and the footprints or places that they must lie over.
+#[derive(Clone, Copy)]
+pub struct Over<'a> {
+    pub reader: &'a FileReader,
+    pub dimensions: &'a FootprintDimensions,
+    pub grid: &'a FootprintGrid,
+}
+
+/// Finds and reads all fields that the granule's own file has.
 ///
 /// # Errors
 /// The whole file cannot be read any more, or the layout file names what is not there.
 pub fn read(
-    reader: &FileReader,
-    dimensions: &FootprintDimensions,
-    grid: &FootprintGrid,
+    over: Over<'_>,
     layout: &LayoutFile,
     problems: &mut Vec<Problem>,
 ) -> Result<Geolocation, GranuleError> {
     let mut found = Geolocation::default();
     for field in &FIELDS {
         let (variable, unit) = layout.field(field.name);
-        let origin = match variable {
+        let candidate = match variable {
             Some("") => None,
-            Some(name) => Some(said(reader.index(), dimensions, grid, name).map_err(|reason| {
+            Some(name) => Some(said(over, name).map_err(|reason| {
                 let why = format!("does not fit the layout file: {}: {reason}", field.name);
-                GranuleError::not_usable(reader.path(), why)
+                GranuleError::not_usable(over.reader.path(), why)
             })?),
-            None => find(reader.index(), dimensions, grid, field),
+            None => find(over, field),
         };
-        let values = match origin {
-            Some(origin) => {
-                read_field(reader, grid, field, origin, unit, &mut found.sources, problems)?
-            }
-            None => {
-                problems.push(Problem::missing(&format!("no `{}`", field.name), "", field.cost));
-                None
-            }
-        };
-        match field.name {
-            "lat" => found.latitude = values,
-            "lon" => found.longitude = values,
-            "view_zenith" => found.view_zenith = values,
-            "view_azimuth" => found.view_azimuth = values,
-            "solar_zenith" => found.solar_zenith = values,
-            "solar_azimuth" => found.solar_azimuth = values,
-            "land" => found.land_fraction = values,
-            _ => found.time = values,
+        let Some(candidate) = candidate else { continue };
+        if let Some((values, source)) = read_field(over, field, candidate, unit, problems)? {
+            found.set(values, source);
         }
     }
     Ok(found)
 }
 
+/// One field as another file has it, over the places of that file.
+pub fn read_from(
+    over: Over<'_>,
+    field: &Field,
+    problems: &mut Vec<Problem>,
+) -> Result<Option<(Vec<f64>, GeolocationSource)>, ReadError> {
+    match find(over, field) {
+        Some(candidate) => read_field(over, field, candidate, None, problems),
+        None => Ok(None),
+    }
+}
+
 /// The variable of a field.
-struct FieldOrigin {
+struct Candidate {
     place: usize,
     /// What speaks for it; nothing more is needed where the layout file says so.
     evidence: Option<Evidence>,
@@ -119,53 +178,47 @@ struct FieldOrigin {
 }
 
 /// The variable that the layout file names.
-fn said(
-    index: &FileIndex,
-    dimensions: &FootprintDimensions,
-    grid: &FootprintGrid,
-    name: &str,
-) -> Result<FieldOrigin, String> {
+fn said(over: Over<'_>, name: &str) -> Result<Candidate, String> {
+    let index = over.reader.index();
     let place = named_variable(index, name)?;
     let variable = &index.variables[place];
     if !variable.kind.is_number() {
         return Err(format!("`{}` holds no numbers", variable.path));
     }
-    let mut spread = dimensions
+    let mut spread = over
+        .dimensions
         .spread(index, variable)
-        .or_else(|| Spread::by_lengths(grid, &index.lengths(variable)))
+        .or_else(|| Spread::by_lengths(over.grid, &index.lengths(variable)))
         .ok_or_else(|| format!("`{}` does not lie over the footprints", variable.path))?;
     // Said outright, so no guess.
     spread.guessed = false;
-    Ok(FieldOrigin { place, evidence: None, spread })
+    Ok(Candidate { place, evidence: None, spread })
 }
 
-fn find(
-    index: &FileIndex,
-    dimensions: &FootprintDimensions,
-    grid: &FootprintGrid,
-    field: &Field,
-) -> Option<FieldOrigin> {
-    let candidates = index.variables.iter().enumerate().filter_map(|(place, variable)| {
-        let spread = dimensions.spread(index, variable).filter(|_| variable.kind.is_number())?;
-        let evidence = evidence(field, variable)?;
-        // Full fields before those that are repeated, own dimensions before look-alikes.
-        let order = (evidence, !spread.is_full(grid), spread.guessed, place);
-        Some((order, FieldOrigin { place, evidence: Some(evidence), spread }))
-    });
+fn find(over: Over<'_>, field: &Field) -> Option<Candidate> {
+    let index = over.reader.index();
+    let all = index.variables.iter().enumerate();
+    let candidates =
+        all.filter(|(_, variable)| !is_truth(variable)).filter_map(|(place, variable)| {
+            let spread =
+                over.dimensions.spread(index, variable).filter(|_| variable.kind.is_number())?;
+            let evidence = evidence(field, variable)?;
+            // Full fields before those that are repeated, own dimensions before look-alikes.
+            let order = (evidence, !spread.is_full(over.grid), spread.guessed, place);
+            Some((order, Candidate { place, evidence: Some(evidence), spread }))
+        });
     candidates.min_by_key(|(order, _)| *order).map(|(_, found)| found)
 }
 
 fn read_field(
-    reader: &FileReader,
-    grid: &FootprintGrid,
+    over: Over<'_>,
     field: &Field,
-    origin: FieldOrigin,
+    candidate: Candidate,
     said_unit: Option<&str>,
-    sources: &mut Vec<GeolocationSource>,
     problems: &mut Vec<Problem>,
-) -> Result<Option<Vec<f64>>, ReadError> {
-    let FieldOrigin { place, evidence, spread } = origin;
-    let variable = &reader.index().variables[place];
+) -> Result<Option<(Vec<f64>, GeolocationSource)>, ReadError> {
+    let Candidate { place, evidence, spread } = candidate;
+    let variable = &over.reader.index().variables[place];
     let path = &variable.path;
     if evidence == Some(Evidence::Name) {
         let what = format!("`{}` is taken for {} by its name", path, field.name);
@@ -184,15 +237,12 @@ fn read_field(
     let convert = match conversion(field.kind, variable, &units, problems) {
         Ok(convert) => convert,
         Err(reason) => {
-            problems.push(Problem::missing(
-                &format!("`{path}` cannot be used: {reason}"),
-                path,
-                field.cost,
-            ));
+            let what = format!("`{path}` cannot be used: {reason}");
+            problems.push(Problem::missing(&what, path, field.cost));
             return Ok(None);
         }
     };
-    let samples = match reader.read_all(variable) {
+    let samples = match over.reader.read_all(variable) {
         Ok(samples) => samples,
         Err(error) if error.fault.ends_the_file() => return Err(error),
         Err(error) => {
@@ -201,16 +251,17 @@ fn read_field(
             return Ok(None);
         }
     };
-    let mut values = spread.over(grid, Decoder::of(variable).decode_all(&samples));
+    let mut values = spread.over(over.grid, Decoder::of(variable).decode_all(&samples));
     values.iter_mut().for_each(|value| *value = convert(*value));
     note_impossible(field.kind, &mut values, path, problems);
-    sources.push(GeolocationSource {
+    let source = GeolocationSource {
         field: field.name,
         variable: path.clone(),
         units: crate::system::clean_text(&units),
+        origin: Origin::Granule,
         place,
-    });
-    Ok(Some(values))
+    };
+    Ok(Some((values, source)))
 }
 
 type Conversion = Box<dyn Fn(f64) -> f64>;
@@ -235,6 +286,10 @@ fn conversion(
             Ok(Box::new(|value| value / 100.0))
         }
         Kind::Share => Ok(Box::new(|value| value)),
+        Kind::Temperature => {
+            let unit = TemperatureUnit::parse(units).map_err(|error| error.to_string())?;
+            Ok(Box::new(move |value| unit.to_kelvin(value)))
+        }
         Kind::Time => {
             let mut texts = ["long_name", "comment", "description"]
                 .iter()
@@ -269,6 +324,8 @@ fn note_impossible(kind: Kind, values: &mut [f64], path: &str, problems: &mut Ve
         Kind::Longitude => -360.0..=360.0,
         Kind::Angle => -360.0..=360.0,
         Kind::Share => 0.0..=1.0,
+        // Wider than any place on Earth: what is beyond is a fill value that nobody declared.
+        Kind::Temperature => 100.0..=500.0,
         Kind::Time => return,
     };
     let mut count = 0;

@@ -1,6 +1,7 @@
 //! The fields of the geolocation, and how files call them.
 
 use crate::netcdf_files::Variable;
+use crate::units::TemperatureUnit;
 
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 /// What sort of number a field is.
@@ -10,19 +11,23 @@ pub enum Kind {
     Angle,
     Share,
     Time,
+    /// In K.
+    Temperature,
 }
 
 /// What is known about a field: how files call it, and what its absence costs.
 pub struct Field {
     pub name: &'static str,
     pub kind: Kind,
+    /// The surest first.
     pub standard_names: &'static [&'static str],
     /// Names that producers use, compared in lower case without underscores.
     pub usual_names: &'static [&'static str],
+    /// What its absence costs; empty where hardly any file has it and nobody misses it.
     pub cost: &'static str,
 }
 
-pub const FIELDS: [Field; 8] = [
+pub const FIELDS: [Field; 12] = [
     Field {
         name: "lat",
         kind: Kind::Latitude,
@@ -91,12 +96,56 @@ pub const FIELDS: [Field; 8] = [
         usual_names: &["time", "obstime", "observationtime"],
         cost: "the time of a footprint is not shown",
     },
+    Field {
+        name: "surface_temperature",
+        kind: Kind::Temperature,
+        standard_names: &[
+            "surface_temperature",
+            "sea_surface_skin_temperature",
+            "sea_surface_subskin_temperature",
+            "sea_surface_temperature",
+            "sea_surface_foundation_temperature",
+        ],
+        usual_names: &[
+            "surfacetemperature",
+            "skintemperature",
+            "tskin",
+            "skt",
+            "tsurf",
+            "seasurfacetemperature",
+            "sst",
+            "landsurfacetemperature",
+        ],
+        cost: "",
+    },
+    Field {
+        name: "snow",
+        kind: Kind::Share,
+        standard_names: &["surface_snow_area_fraction", "surface_snow_binary_mask"],
+        usual_names: &["snow", "snowfraction", "snowfrac", "snowcover"],
+        cost: "",
+    },
+    Field {
+        name: "sea_ice",
+        kind: Kind::Share,
+        standard_names: &["sea_ice_area_fraction", "sea_ice_binary_mask"],
+        usual_names: &["seaice", "seaicefraction", "seaicecover", "icefraction"],
+        cost: "",
+    },
+    Field {
+        name: "cloud_amount",
+        kind: Kind::Share,
+        standard_names: &["cloud_area_fraction", "cloud_binary_mask"],
+        usual_names: &["cloudamount", "cloudfraction", "cloudfrac", "cloudcover"],
+        cost: "",
+    },
 ];
 
 /// What speaks for a variable being a field; the earlier the surer.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Evidence {
-    StandardName,
+    /// With its place among those that the field may have.
+    StandardName(usize),
     Units,
     Name,
 }
@@ -104,13 +153,14 @@ pub enum Evidence {
 /// What speaks for a variable being a field; nothing where it is something else.
 pub fn evidence(field: &Field, variable: &Variable) -> Option<Evidence> {
     let standard_name = variable.text("standard_name").unwrap_or_default();
-    if field.standard_names.contains(&standard_name.as_str()) {
-        return Some(Evidence::StandardName);
+    if let Some(place) = field.standard_names.iter().position(|name| *name == standard_name) {
+        return Some(Evidence::StandardName(place));
     }
     if !standard_name.is_empty() {
         return None;
     }
-    let units = variable.text("units").unwrap_or_default().to_lowercase().replace('_', "");
+    let as_written = variable.text("units").unwrap_or_default();
+    let units = as_written.to_lowercase().replace('_', "");
     let units_say = match field.kind {
         Kind::Latitude => {
             ["degreesnorth", "degreenorth", "degreesn", "degreen"].contains(&units.as_str())
@@ -119,7 +169,9 @@ pub fn evidence(field: &Field, variable: &Variable) -> Option<Evidence> {
             ["degreeseast", "degreeeast", "degreese", "degreee"].contains(&units.as_str())
         }
         Kind::Time => units.contains(" since "),
-        Kind::Angle | Kind::Share => false,
+        // A unit of temperature alone says too little, but without one it is none.
+        Kind::Temperature if TemperatureUnit::parse(&as_written).is_err() => return None,
+        Kind::Angle | Kind::Share | Kind::Temperature => false,
     };
     let plain: String = variable.name.to_lowercase().replace('_', "");
     if field.usual_names.contains(&plain.as_str()) {

@@ -15,6 +15,7 @@ use super::geolocation::Geolocation;
 use super::identity::Identity;
 use super::layout::Layout;
 use super::layout_file::BandEntry;
+use super::lent::{Calculated, Lender};
 use super::opening::Opening;
 use super::passing::PassingSlabs;
 use super::problem::Problem;
@@ -31,6 +32,9 @@ pub struct Granule {
     pub(super) sources: Vec<BandSource>,
     pub(super) geolocation: Geolocation,
     pub(super) variables: Vec<FootprintVariable>,
+    pub(super) lenders: Vec<Lender>,
+    /// For each band.
+    pub(super) calculated: Vec<Option<Calculated>>,
     pub(super) problems: Vec<Problem>,
     pub(super) cube: Arc<Cube>,
     pub(super) passing: PassingSlabs,
@@ -177,28 +181,42 @@ impl Granule {
     }
 
     /// Reads a variable of the footprints: one number for each, missing as NaN. `name` is its path,
-    /// or its last part where that is the only one of its kind.
+    /// or its last part where that is the only one of its kind; the granule's own variables go before
+    /// those that are lent to it.
     pub fn read_variable(&self, name: &str) -> Result<Vec<f64>, GranuleError> {
-        let found = self.variable(name).ok_or_else(|| GranuleError::NoVariable {
+        let (lender, found) = self.named(name).ok_or_else(|| GranuleError::NoVariable {
             path: self.path().to_owned(),
             name: name.to_owned(),
-            nearest: self.variables.iter().map(|variable| variable.name.clone()).collect(),
+            nearest: self.all_variables().map(|variable| variable.name.clone()).collect(),
         })?;
+        if let Some(lender) = lender {
+            return Ok(lender.read(found)?);
+        }
         let variable = &self.index().variables[found.place];
         let values = Decoder::of(variable).decode_all(&self.reader.read_all(variable)?);
         let spread = self.dimensions.spread(self.index(), variable);
         Ok(spread.map_or(Vec::new(), |spread| spread.over(&self.footprints, values)))
     }
 
-    /// A variable of the footprints by its path, or by its last part where only one has it.
+    /// A variable of the footprints by its path, or by its last part where only one has it; the
+    /// granule's own before those that are lent.
     pub fn variable(&self, name: &str) -> Option<&FootprintVariable> {
+        self.named(name).map(|(_, variable)| variable)
+    }
+
+    /// All variables of the footprints, the granule's own and those that are lent to it.
+    pub fn all_variables(&self) -> impl Iterator<Item = &FootprintVariable> {
+        self.variables.iter().chain(self.lenders.iter().flat_map(Lender::variables))
+    }
+
+    fn named(&self, name: &str) -> Option<(Option<&Lender>, &FootprintVariable)> {
         let path = name.trim_start_matches('/');
-        if let Some(found) = self.variables.iter().find(|variable| variable.name == path) {
-            return Some(found);
-        }
-        let last = |variable: &&FootprintVariable| variable.name.rsplit('/').next() == Some(path);
-        let mut found = self.variables.iter().filter(last);
-        found.next().filter(|_| found.next().is_none())
+        let own = named_among(&self.variables, path).map(|variable| (None, variable));
+        own.or_else(|| {
+            self.lenders
+                .iter()
+                .find_map(|lender| Some((Some(lender), named_among(lender.variables(), path)?)))
+        })
     }
 
     /// The valid channel nearest to a wavenumber (cm-1), within 0.6 of the spacing there.
@@ -210,4 +228,17 @@ impl Granule {
     pub fn channels_between(&self, low: f64, high: f64) -> Vec<Channel> {
         channels_between(&self.bands, low, high)
     }
+}
+
+/// A variable by its path, or by its last part where only one has it.
+fn named_among<'v>(
+    variables: &'v [FootprintVariable],
+    path: &str,
+) -> Option<&'v FootprintVariable> {
+    if let Some(found) = variables.iter().find(|variable| variable.name == path) {
+        return Some(found);
+    }
+    let last = |variable: &&FootprintVariable| variable.name.rsplit('/').next() == Some(path);
+    let mut found = variables.iter().filter(last);
+    found.next().filter(|_| found.next().is_none())
 }

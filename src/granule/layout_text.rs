@@ -4,6 +4,7 @@ use std::fmt::Write;
 
 use super::band::{Apodisation, Band};
 use super::footprint_variables::VariableRole;
+use super::geolocation::{GeolocationSource, Origin};
 use super::geolocation_fields::FIELDS;
 use super::granule_file::Granule;
 use super::problem::ProblemKind;
@@ -26,8 +27,10 @@ pub fn layout_text(granule: &Granule) -> String {
     }
     text.push_str("\n[geolocation]\n");
     for field in &FIELDS {
-        let source = granule.geolocation().sources.iter().find(|one| one.field == field.name);
-        if let Some(source) = source {
+        // What is lent or computed is not in this file.
+        let own =
+            |one: &&GeolocationSource| one.field == field.name && one.origin == Origin::Granule;
+        if let Some(source) = granule.geolocation().sources.iter().find(own) {
             write_guesses(&mut text, granule, &source.variable);
             line(&mut text, field.name, &quoted(&source.variable));
             if !source.units.is_empty() {

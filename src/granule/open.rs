@@ -11,12 +11,14 @@ use super::find_bands;
 use super::footprint_dimensions::FootprintDimensions;
 use super::footprint_variables;
 use super::footprints::FootprintGrid;
-use super::geolocation;
+use super::geolocation::{self, GeolocationSource, Origin, Over};
 use super::granule_file::Granule;
 use super::layout_file::{ApodiseBy, BandEntry, LayoutFile};
+use super::lending;
 use super::memory_plan::MemoryPlan;
 use super::named_variable::named_variable;
 use super::noise::{Noise, NoiseSearch};
+use super::opening::Opening;
 use super::passing::PassingSlabs;
 use super::problem::Problem;
 use super::slabs::rows_per_slab;
@@ -26,12 +28,13 @@ use crate::netcdf_files::{FileIndex, FileReader, ReadError, ReadFault, Variable}
 const MOST_FOOTPRINTS: usize = 20_000_000;
 
 /// Understands an open file, whose values may take as much memory as is planned, with what the
-/// layout file says of it.
+/// layout file says of it, and joins the files that lend to it.
 pub fn open(
     reader: FileReader,
     memory: &MemoryPlan,
-    layout: &LayoutFile,
+    how: &Opening,
 ) -> Result<Granule, GranuleError> {
+    let layout = &how.layout;
     let index = reader.index();
     let mut problems: Vec<Problem> = index
         .unreadable
@@ -84,10 +87,17 @@ pub fn open(
         bands.push(band);
         sources.push(source);
     }
-    let geolocation = geolocation::read(&reader, &dimensions, &grid, layout, &mut problems)?;
+    let over = Over { reader: &reader, dimensions: &dimensions, grid: &grid };
+    let mut geolocation = geolocation::read(over, layout, &mut problems)?;
+    let lenders = lending::lenders(how, reader.path(), &grid, &mut geolocation, &mut problems)?;
+    geolocation.note_missing(&mut problems);
+    let calculated = lending::calculated(over, &bands, &sources, &lenders, &mut problems)?;
     let quality = said_quality(index, &dimensions, layout)
         .map_err(|reason| contradicted(&reader, &reason))?;
-    let is_geolocation = |place| geolocation.sources.iter().any(|source| source.place == place);
+    let is_geolocation = |place| {
+        let own = |source: &&GeolocationSource| source.origin == Origin::Granule;
+        geolocation.sources.iter().filter(own).any(|source| source.place == place)
+    };
     let footprint_variables = footprint_variables::find(
         index,
         &dimensions,
@@ -103,6 +113,8 @@ pub fn open(
         sources,
         geolocation,
         variables: footprint_variables,
+        lenders,
+        calculated,
         problems,
         cube,
         passing: PassingSlabs::new(memory.passing()),

@@ -11,7 +11,7 @@ use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, Judgement};
 use super::unit::LayerUnit;
 use super::whole_granule::WholeGranule;
 use crate::granule::{Channel, Cube, Granule, GranuleError, Quantity};
-use crate::spectral::planck;
+use crate::spectral::{brightness_temperature_or_nan, planck};
 use crate::system::Cancel;
 
 /// The names of a granule: its channels, its geolocation, the indices of its footprint dimensions,
@@ -82,7 +82,7 @@ impl<'g> GranuleNames<'g> {
         let defined = self.definitions.into_iter().flat_map(|all| all.keys().cloned());
         let dimensions = self.granule.footprints().names().iter().cloned();
         let variables =
-            self.granule.variables().iter().map(|variable| format!("var(\"{}\")", variable.name));
+            self.granule.all_variables().map(|variable| format!("var(\"{}\")", variable.name));
         friendly.chain(defined).chain(dimensions).chain(variables).collect()
     }
 
@@ -156,6 +156,24 @@ impl Names for GranuleNames<'_> {
         self.whole.as_ref().map(|_| self.granule.footprints_at_once())
     }
 
+    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError> {
+        let stored = self.stores_temperature(channel);
+        let kelvin = |value: f64| match stored {
+            true => value,
+            false => brightness_temperature_or_nan(channel.wavenumber, value),
+        };
+        match self.granule.calculated_channel(channel) {
+            Ok(Some(values)) => Ok(Values {
+                values: values.into_iter().map(kelvin).collect(),
+                unit: LayerUnit::Kelvin,
+            }),
+            Ok(None) => Err(NameError::NotInFile(
+                "calculated clear-sky spectra of this band (--with FILE lends them)".to_owned(),
+            )),
+            Err(error) => Err(NameError::Unreadable(error.to_string())),
+        }
+    }
+
     fn is_complete(&self, channel: &Channel) -> bool {
         self.whole.is_some() || self.cube.is_complete(channel.band)
     }
@@ -183,7 +201,7 @@ impl Names for GranuleNames<'_> {
 
     fn variable(&self, name: &str) -> Result<Values, NameError> {
         let Some(variable) = self.granule.variable(name) else {
-            let all = self.granule.variables().iter();
+            let all = self.granule.all_variables();
             let known = all.map(|variable| variable.name.clone()).collect();
             return Err(NameError::NoVariable { name: name.to_owned(), known });
         };

@@ -106,6 +106,12 @@ pub trait Names: Sync {
         None
     }
 
+    /// The brightness temperature, K, that a model calculated for the channel under clear sky.
+    ///
+    /// # Errors
+    /// There are no calculated spectra, or they can't be read.
+    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError>;
+
     /// Whether all of the channel's numbers have been read; those that have not are NaN.
     fn is_complete(&self, channel: &Channel) -> bool;
 

@@ -43,6 +43,10 @@ impl Names for LentNames<'_> {
         self.names.footprints_at_once()
     }
 
+    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError> {
+        self.names.clear_temperature(channel)
+    }
+
     fn is_complete(&self, channel: &Channel) -> bool {
         self.names.is_complete(channel)
     }

@@ -2,7 +2,9 @@
 
 use serde::Serialize;
 
-use crate::granule::{Band, Decoder, FootprintVariable, Granule, Problem, Quantity};
+use crate::granule::{
+    Band, Decoder, FootprintVariable, Granule, GranuleError, Lender, Origin, Problem, Quantity,
+};
 use crate::netcdf_files::{Storage, Variable};
 use crate::system::clean_text;
 use crate::units::RadianceUnit;
@@ -24,7 +26,22 @@ pub struct Description {
     pub bands: Vec<BandDescription>,
     pub geolocation: Vec<Field>,
     pub variables: Vec<VariableDescription>,
+    /// Files that lend fields.
+    pub lenders: Vec<LenderDescription>,
     pub problems: Vec<ProblemDescription>,
+}
+
+/// A file that lends.
+#[derive(Debug, Serialize)]
+pub struct LenderDescription {
+    pub file: String,
+    pub blake3: String,
+    pub bytes: u64,
+    pub joined: String,
+    pub footprints_matched: usize,
+    /// Fields that the granule takes from it.
+    pub lends: Vec<String>,
+    pub variables: Vec<VariableDescription>,
 }
 
 /// The footprints' dimensions.
@@ -67,6 +84,8 @@ pub struct BandDescription {
     pub axis_units: &'static str,
     pub apodisation: String,
     pub noise: Option<NoiseDescription>,
+    /// Calculated clear-sky spectra.
+    pub calculated: Option<CalculatedDescription>,
     /// Channels that no layer takes.
     pub bad_channels: usize,
     pub storage: StorageDescription,
@@ -79,6 +98,15 @@ pub struct NoiseDescription {
     pub units_in_file: String,
     /// The footprints' dimensions that it differs along.
     pub along: Vec<String>,
+}
+
+/// The calculated clear-sky spectra of a band.
+#[derive(Debug, Serialize)]
+pub struct CalculatedDescription {
+    pub variable: String,
+    pub units_in_file: String,
+    /// The file that lends them; none where it is the granule itself.
+    pub file: Option<String>,
 }
 
 /// How values are stored.
@@ -97,6 +125,8 @@ pub struct StorageDescription {
 pub struct Field {
     pub name: &'static str,
     pub variable: String,
+    /// The file that lends it; none where it is the granule itself.
+    pub file: Option<String>,
     pub units_in_file: String,
     pub lowest: Option<f64>,
     pub highest: Option<f64>,
@@ -124,10 +154,15 @@ pub struct ProblemDescription {
 }
 
 impl Description {
-    /// Describes a granule; reads nothing.
-    pub fn of(granule: &Granule) -> Self {
+    /// Describes a granule; reads nothing but the lending files, for their hashes.
+    ///
+    /// # Errors
+    /// A lending file cannot be read.
+    pub fn of(granule: &Granule) -> Result<Self, GranuleError> {
         let bands = granule.bands().iter().enumerate();
-        Self {
+        let lenders = granule.lenders().iter().enumerate();
+        let lenders = lenders.map(|(place, lender)| LenderDescription::of(granule, place, lender));
+        Ok(Self {
             schema: SCHEMA,
             file: clean_text(&granule.path().to_string_lossy()),
             format: granule.index().format.label(),
@@ -139,8 +174,24 @@ impl Description {
             bands: bands.map(|(place, band)| BandDescription::of(granule, place, band)).collect(),
             geolocation: fields(granule),
             variables: granule.variables().iter().map(VariableDescription::of).collect(),
+            lenders: lenders.collect::<Result<_, _>>()?,
             problems: granule.problems().iter().map(ProblemDescription::of).collect(),
-        }
+        })
+    }
+}
+
+impl LenderDescription {
+    fn of(granule: &Granule, place: usize, lender: &Lender) -> Result<Self, GranuleError> {
+        let identity = lender.hash()?;
+        Ok(Self {
+            file: clean_text(&lender.path().to_string_lossy()),
+            blake3: identity.hash.clone(),
+            bytes: identity.size,
+            joined: lender.how().label(),
+            footprints_matched: lender.matched(),
+            lends: granule.lent_by(place),
+            variables: lender.variables().iter().map(VariableDescription::of).collect(),
+        })
     }
 }
 
@@ -188,6 +239,11 @@ impl BandDescription {
                 variable: clean_text(&noise.variable),
                 units_in_file: clean_text(&noise.unit_text),
                 along: noise.along.iter().map(|&place| clean_text(&names[place])).collect(),
+            }),
+            calculated: granule.calculated(place).map(|found| CalculatedDescription {
+                variable: clean_text(&found.variable),
+                units_in_file: clean_text(&found.unit_text),
+                file: found.lender.map(|lender| granule.lenders()[lender].name()),
             }),
             bad_channels: band.bad.iter().filter(|bad| **bad).count(),
             storage: StorageDescription::of(variable, &variable.storage),
@@ -244,6 +300,10 @@ fn fields(granule: &Granule) -> Vec<Field> {
         Field {
             name: source.field,
             variable: clean_text(&source.variable),
+            file: match source.origin {
+                Origin::Lent(lender) => granule.lenders().get(lender).map(Lender::name),
+                Origin::Granule | Origin::Computed => None,
+            },
             units_in_file: source.units.clone(),
             lowest: finite().reduce(f64::min),
             highest: finite().reduce(f64::max),

@@ -2,7 +2,9 @@
 
 use std::io::{self, Write};
 
-use super::description::{BandDescription, Description, Field, VariableDescription};
+use super::description::{
+    BandDescription, Description, Field, LenderDescription, VariableDescription,
+};
 
 /// Prints everything, what matters first.
 pub fn print(description: &Description, out: &mut impl Write) -> io::Result<()> {
@@ -36,6 +38,12 @@ pub fn print(description: &Description, out: &mut impl Write) -> io::Result<()> 
         for variable in variables() {
             print_variable(variable, out)?;
         }
+    }
+    if !description.lenders.is_empty() {
+        heading(out, "Files that lend", false)?;
+    }
+    for lender in &description.lenders {
+        print_lender(lender, description.footprints.count, out)?;
     }
     heading(out, "Problems", description.problems.is_empty())?;
     for problem in &description.problems {
@@ -94,10 +102,32 @@ fn print_band(band: &BandDescription, out: &mut impl Write) -> io::Result<()> {
         };
         writeln!(out, "    noise `{}` in {:?}{along}", noise.variable, noise.units_in_file)?;
     }
+    if let Some(calculated) = &band.calculated {
+        let file = calculated.file.as_ref().map(|file| format!(" of {file}")).unwrap_or_default();
+        let units = &calculated.units_in_file;
+        writeln!(out, "    calculated clear sky `{}`{file} in {units:?}", calculated.variable)?;
+    }
     if band.bad_channels > 0 {
         writeln!(out, "    {} channels are in no layer", band.bad_channels)?;
     }
     writeln!(out, "    stored as {}", storage(band))
+}
+
+fn print_lender(
+    lender: &LenderDescription,
+    footprints: usize,
+    out: &mut impl Write,
+) -> io::Result<()> {
+    writeln!(out, "  {}, {}", lender.file, bytes(lender.bytes))?;
+    let matched = lender.footprints_matched;
+    writeln!(out, "    joined {}: {matched} of {footprints} footprints", lender.joined)?;
+    let lends = if lender.lends.is_empty() { "nothing" } else { &lender.lends.join(", ") };
+    writeln!(out, "    lends by itself: {lends}")?;
+    for variable in &lender.variables {
+        write!(out, "  ")?;
+        print_variable(variable, out)?;
+    }
+    writeln!(out, "    blake3 {}", lender.blake3)
 }
 
 fn spacing(band: &BandDescription) -> String {
@@ -130,6 +160,9 @@ fn storage(band: &BandDescription) -> String {
 
 fn print_field(field: &Field, out: &mut impl Write) -> io::Result<()> {
     write!(out, "  {}: `{}`", field.name, field.variable)?;
+    if let Some(file) = &field.file {
+        write!(out, " of {file}")?;
+    }
     if !field.units_in_file.is_empty() {
         write!(out, " in {:?}", field.units_in_file)?;
     }

@@ -99,6 +99,10 @@ impl Names for FakeNames {
         }
     }
 
+    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError> {
+        self.named(&format!("bt_clear({})", channel.wavenumber))
+    }
+
     fn is_complete(&self, channel: &Channel) -> bool {
         channel.wavenumber < 2700.0
     }

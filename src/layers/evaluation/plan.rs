@@ -136,6 +136,13 @@ impl<'n> Planner<'n> {
                 self.values(node.to_string(), ask, &node.span, draft)
             }
             Kind::Spectral(quantity, place) => self.spectral(*quantity, place, &node.span, draft),
+            Kind::Calculated(place) => {
+                let clear = |names: &dyn Names| {
+                    let channel = names.channel_near(place.wavenumber())?;
+                    names.clear_temperature(&channel)
+                };
+                self.values(node.to_string(), clear, &node.span, draft)
+            }
             Kind::Planck(temperature, place) => {
                 self.node(temperature, draft)?;
                 draft.add(Operation::Planck(place.wavenumber()));

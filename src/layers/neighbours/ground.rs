@@ -5,10 +5,10 @@
 
 use rayon::prelude::*;
 
-use super::kd_tree::KdTree;
 use super::lists::MOST;
-use super::positions::{Vector, minus, point};
 use super::spacing::{Steps, steps};
+use crate::granule::globe::KdTree;
+use crate::granule::globe::{Vector, minus, point};
 
 /// Neighbours lie within this many local spacings: the corners of a 3x3 box lie at 1.41, the next
 /// row at 2.

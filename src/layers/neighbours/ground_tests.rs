@@ -2,8 +2,8 @@
 
 use super::Neighbours;
 use super::ground::{REACH, lists};
-use super::positions::{minus, point};
 use super::spacing::steps;
+use crate::granule::globe::{minus, point};
 
 /// A grid on the equator: `line` degrees from line to line, `position` degrees along the line.
 fn grid(lines: usize, positions: usize, line: f64, position: f64) -> (Vec<f64>, Vec<f64>) {

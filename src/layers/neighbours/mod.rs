@@ -2,9 +2,7 @@
 
 mod array;
 mod ground;
-mod kd_tree;
 mod lists;
-mod positions;
 mod spacing;
 mod statistics;
 

@@ -3,7 +3,7 @@
 //! Towards the ends of a scan line footprints lie up to three times as far apart along the line as
 //! from line to line, so one spacing for both directions would leave a neighbourhood of one line.
 
-use super::positions::{Vector, cross, dot, mean, minus, times};
+use crate::granule::globe::{Vector, cross, dot, mean, minus, times};
 
 /// Steps shorter than this fraction of the earth's radius (about 6 m) are no steps: several
 /// footprints were given one position.

@@ -202,6 +202,9 @@ fn trees() -> impl Strategy<Value = Node> {
         "[ -~]{1,12}".prop_map(Kind::Variable),
         "[ -~]{1,12}".prop_map(|name| Kind::Judged(Judgement::Margin, Some(name))),
         Just(Kind::Judged(Judgement::Doubt, None)),
+        (1.0f64..3000.0).prop_map(|value| Kind::Calculated(
+            Place::new(value, SpectralUnit::PerCentimetre).unwrap()
+        )),
         (quantity, prop_oneof![place.prop_map(Where::At), interval])
             .prop_map(|(quantity, place)| Kind::Spectral(quantity, place)),
     ]

@@ -28,6 +28,7 @@ impl fmt::Display for Node {
             Kind::Name(name) => out.write_str(name),
             Kind::Variable(name) => write!(out, "var({})", quoted(name)),
             Kind::Spectral(quantity, place) => write_spectral(*quantity, place, out),
+            Kind::Calculated(place) => write!(out, "bt_clear({place})"),
             Kind::Planck(temperature, place) => {
                 write!(out, "planck({temperature}, {place})")
             }

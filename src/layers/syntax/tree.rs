@@ -33,7 +33,8 @@ impl Node {
             | Kind::Name(_)
             | Kind::Variable(_)
             | Kind::Judged(..)
-            | Kind::Spectral(..) => {}
+            | Kind::Spectral(..)
+            | Kind::Calculated(_) => {}
         }
     }
 }
@@ -58,6 +59,8 @@ pub enum Kind {
     Judged(Judgement, Option<String>),
     /// `bt(…)` or `rad(…)`.
     Spectral(Quantity, Where),
+    /// `bt_clear(nu)`: the calculated clear-sky brightness temperature of the nearest channel.
+    Calculated(Place),
     /// `planck(T, nu)`: the radiance of a black body.
     Planck(Box<Node>, Place),
     /// `-a`, `not a`.

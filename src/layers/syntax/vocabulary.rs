@@ -44,6 +44,18 @@ pub const FRIENDLY_NAMES: &[FriendlyName] = &[
         unit: LayerUnit::Time,
         meaning: "time, seconds since 1970-01-01 UTC without leap seconds",
     },
+    FriendlyName {
+        name: "surface_temperature",
+        unit: LayerUnit::Kelvin,
+        meaning: "temperature of the surface by another source, K",
+    },
+    FriendlyName { name: "snow", unit: LayerUnit::One, meaning: "share under snow, 0 to 1" },
+    FriendlyName { name: "sea_ice", unit: LayerUnit::One, meaning: "share under sea ice, 0 to 1" },
+    FriendlyName {
+        name: "cloud_amount",
+        unit: LayerUnit::One,
+        meaning: "share under cloud by another source, 0 to 1",
+    },
 ];
 
 /// What is worked out from the geolocation fields, under the same names in every file.
@@ -87,6 +99,8 @@ pub enum Callable {
     Spectral(Quantity),
     /// `planck`.
     Planck,
+    /// `bt_clear`.
+    Calculated,
     /// `var`.
     Variable,
     /// Functions of numbers, and how many they take.
@@ -111,6 +125,7 @@ const CALLABLE: &[(&str, Callable, &str)] = &[
     ("bt", Callable::Spectral(Quantity::BrightnessTemperature), "bt(900)"),
     ("rad", Callable::Spectral(Quantity::Radiance), "rad(667.5)"),
     ("share_missing", Callable::Spectral(Quantity::MissingShare), "share_missing(650..2760)"),
+    ("bt_clear", Callable::Calculated, "bt_clear(900)"),
     ("planck", Callable::Planck, "planck(280, 900)"),
     ("var", Callable::Variable, "var(\"name in the file\")"),
     ("min", Callable::Function(Function::Min, Arity::TwoOrMore), "min(a, b)"),

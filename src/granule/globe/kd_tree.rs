@@ -24,6 +24,70 @@ impl KdTree {
     pub fn within(&self, centre: Vector, radius: f64, look: &mut dyn FnMut(u32, Vector) -> bool) {
         search(&self.points, &self.axes, centre, radius, look);
     }
+
+    /// The nearest point within `radius` of `centre` that is accepted; of several as near, the one
+    /// with the lowest number.
+    pub fn nearest(
+        &self,
+        centre: Vector,
+        radius: f64,
+        accepts: &dyn Fn(u32) -> bool,
+    ) -> Option<u32> {
+        let mut best = Best { squared: radius * radius, number: None };
+        approach(&self.points, &self.axes, centre, accepts, &mut best);
+        best.number
+    }
+}
+
+/// The nearest point so far, or the distance within which one is looked for.
+struct Best {
+    squared: f64,
+    number: Option<u32>,
+}
+
+impl Best {
+    fn offer(
+        &mut self,
+        (number, point): (u32, Vector),
+        centre: Vector,
+        accepts: &dyn Fn(u32) -> bool,
+    ) {
+        let offset = minus(point, centre);
+        let squared = dot(offset, offset);
+        let nearer = match self.number {
+            None => squared <= self.squared,
+            Some(best) => squared < self.squared || (squared == self.squared && number < best),
+        };
+        if nearer && accepts(number) {
+            *self = Self { squared, number: Some(number) };
+        }
+    }
+}
+
+/// Goes first into the half in which the centre lies, and into the other only where it may hold
+/// something nearer.
+fn approach(
+    points: &[(u32, Vector)],
+    axes: &[u8],
+    centre: Vector,
+    accepts: &dyn Fn(u32) -> bool,
+    best: &mut Best,
+) {
+    if points.len() <= LEAF {
+        points.iter().for_each(|point| best.offer(*point, centre, accepts));
+        return;
+    }
+    let middle = points.len() / 2;
+    let axis = usize::from(axes[middle]);
+    let beyond = centre[axis] - points[middle].1[axis];
+    let low = (&points[..middle], &axes[..middle]);
+    let high = (&points[middle + 1..], &axes[middle + 1..]);
+    let (first, second) = if beyond < 0.0 { (low, high) } else { (high, low) };
+    approach(first.0, first.1, centre, accepts, best);
+    best.offer(points[middle], centre, accepts);
+    if beyond * beyond <= best.squared {
+        approach(second.0, second.1, centre, accepts, best);
+    }
 }
 
 /// The axis along which the points are spread most.
@@ -124,6 +188,28 @@ mod tests {
             expected.sort_unstable();
             found.sort_unstable();
             prop_assert_eq!(found, expected);
+        }
+    }
+
+    proptest! {
+        #[test]
+        fn the_nearest_is_that_of_a_look_at_every_point(
+            points in prop::collection::vec([coordinate(), coordinate(), coordinate()], 0..300),
+            centre in [coordinate(), coordinate(), coordinate()],
+            radius in 0.0f64..1.5,
+            modulus in 1u32..4,
+        ) {
+            let accepts = |number: u32| number % modulus == 0;
+            let numbered: Vec<(u32, Vector)> = (0..).zip(points).collect();
+            let squared = |point: Vector| dot(minus(point, centre), minus(point, centre));
+            let expected = numbered
+                .iter()
+                .filter(|(number, point)| accepts(*number) && squared(*point) <= radius * radius)
+                .min_by(|(one, a), (other, b)| {
+                    squared(*a).total_cmp(&squared(*b)).then(one.cmp(other))
+                })
+                .map(|(number, _)| *number);
+            prop_assert_eq!(KdTree::new(numbered).nearest(centre, radius, &accepts), expected);
         }
     }
 
