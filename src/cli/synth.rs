@@ -17,15 +17,18 @@ pub struct Arguments {
     /// Folder for the granules; made if it is not there.
     #[arg(long, value_name = "DIR")]
     out: PathBuf,
-    /// What they show: a scene's name, or all.
-    #[arg(long, value_name = "NAME", default_value = "all")]
-    scene: String,
+    /// What they show: names of scenes, all, or samples (the four sample granules).
+    #[arg(long, value_name = "NAME", value_delimiter = ',', default_value = "all")]
+    scene: Vec<String>,
     /// How large they are: sample, interferometer, grating, or numbers such as 20x30x9.
     #[arg(long, value_name = "SHAPE", default_value = "sample")]
     shape: String,
     /// What their random numbers grow from; the same seed gives the same granule.
     #[arg(long, value_name = "NUMBER", default_value_t = DEFAULT_SEED)]
     seed: u64,
+    /// Draw another climate from a seed: air, gases, ground, clouds, view, hour, noise, defects.
+    #[arg(long, value_name = "NUMBER")]
+    perturbed: Option<u64>,
     /// Replace files that are there already.
     #[arg(long)]
     force: bool,
@@ -46,23 +49,34 @@ fn scenes_and_shapes() -> String {
     text
 }
 
+/// The scenes that were named, each once, in the order of the list in the help.
+fn scenes(names: &[String]) -> anyhow::Result<Vec<SceneName>> {
+    let known = |name: &str| {
+        ["all", "samples"].contains(&name) || SceneName::ALL.iter().any(|one| one.label() == name)
+    };
+    if let Some(stranger) = names.iter().find(|name| !known(name)) {
+        let labels = SceneName::ALL.map(SceneName::label).join(", ");
+        let message = format!("--scene: {stranger:?} is no scene: write all, samples, {labels}");
+        return Err(UsageError(message).into());
+    }
+    let is_named = |scene: &SceneName| {
+        names.iter().any(|name| match name.as_str() {
+            "all" => true,
+            "samples" => SceneName::SAMPLES.contains(scene),
+            name => name == scene.label(),
+        })
+    };
+    Ok(SceneName::ALL.into_iter().filter(is_named).collect())
+}
+
 /// What the arguments mean: recipes and where they go.
 fn plan(arguments: &Arguments) -> anyhow::Result<Vec<(Recipe, PathBuf)>> {
     let shape =
         Shape::parse(&arguments.shape).map_err(|error| UsageError(format!("--shape: {error}")))?;
-    let scenes: Vec<SceneName> = SceneName::ALL
-        .into_iter()
-        .filter(|scene| arguments.scene == "all" || arguments.scene == scene.label())
-        .collect();
-    if scenes.is_empty() {
-        let names: Vec<&str> = SceneName::ALL.iter().map(|scene| scene.label()).collect();
-        let names = names.join(", ");
-        let message = format!("--scene: {:?} is no scene: write all, {names}", arguments.scene);
-        return Err(UsageError(message).into());
-    }
+    let scenes = scenes(&arguments.scene)?;
     let planned: Vec<(Recipe, PathBuf)> = scenes
         .into_iter()
-        .map(|scene| Recipe { scene, shape, seed: arguments.seed })
+        .map(|scene| Recipe { scene, shape, seed: arguments.seed, perturbed: arguments.perturbed })
         .map(|recipe| (recipe, arguments.out.join(recipe.file_name())))
         .collect();
     if !arguments.force

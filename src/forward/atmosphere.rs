@@ -1,41 +1,11 @@
-//! The six standard atmospheres, and what may be changed about them.
+//! A column of air: levels from the ground upward and the layers between them.
 
-use std::sync::OnceLock;
-
+use super::changes::Changes;
 use super::gas::Gas;
+use super::standard::Standard;
 
 /// Air molecules per cm3 at 1 hPa and 1 K: 100 / (k * 1e6) with k in J K-1.
 const MOLECULES_PER_HPA: f64 = 1e-4 / crate::spectral::constants::BOLTZMANN;
-
-/// One of the AFGL standard atmospheres.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum Standard {
-    /// Tropical, 15 N.
-    Tropical,
-    /// Mid-latitude summer.
-    MidlatitudeSummer,
-    /// Mid-latitude winter.
-    MidlatitudeWinter,
-    /// Subarctic summer.
-    SubarcticSummer,
-    /// Subarctic winter.
-    SubarcticWinter,
-    /// US Standard 1976.
-    UsStandard,
-}
-
-impl Standard {
-    fn name(self) -> &'static str {
-        match self {
-            Standard::Tropical => "tropical",
-            Standard::MidlatitudeSummer => "midlatitude_summer",
-            Standard::MidlatitudeWinter => "midlatitude_winter",
-            Standard::SubarcticSummer => "subarctic_summer",
-            Standard::SubarcticWinter => "subarctic_winter",
-            Standard::UsStandard => "us_standard",
-        }
-    }
-}
 
 /// State of the air at one height.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -55,55 +25,6 @@ impl Level {
     /// tables does not fit its own pressure, so none is used).
     fn density(&self) -> f64 {
         self.pressure * MOLECULES_PER_HPA / self.temperature
-    }
-}
-
-/// What is changed about a standard atmosphere.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Changes {
-    /// Added to the temperature at the ground, K; fades with height.
-    pub warming: f64,
-    /// Height over which the warming falls to 1/e, km.
-    pub warming_depth: f64,
-    /// How much colder than the air above it the ground layer is, K.
-    pub inversion: f64,
-    /// Height over which the inversion fades to 1/e, km.
-    pub inversion_depth: f64,
-    /// Factor on water vapour.
-    pub water: f64,
-    /// Factor on ozone.
-    pub ozone: f64,
-    /// Carbon dioxide, ppmv.
-    pub co2_ppmv: f64,
-    /// Methane at the ground, ppmv.
-    pub ch4_ppmv: f64,
-    /// Nitrous oxide at the ground, ppmv.
-    pub n2o_ppmv: f64,
-    /// Factor on carbon monoxide.
-    pub co: f64,
-    /// Sulphur dioxide, Dobson units.
-    pub so2_dobson: f64,
-    /// Height of the sulphur dioxide, km.
-    pub so2_height: f64,
-}
-
-impl Default for Changes {
-    /// Present amounts of the well-mixed gases (NOAA Global Monitoring Laboratory, rounded).
-    fn default() -> Self {
-        Changes {
-            warming: 0.0,
-            warming_depth: 8.0,
-            inversion: 0.0,
-            inversion_depth: 0.6,
-            water: 1.0,
-            ozone: 1.0,
-            co2_ppmv: 422.0,
-            ch4_ppmv: 1.92,
-            n2o_ppmv: 0.337,
-            co: 1.0,
-            so2_dobson: 0.0,
-            so2_height: 10.0,
-        }
     }
 }
 
@@ -132,10 +53,10 @@ const TOP_KM: f64 = 75.0;
 impl Atmosphere {
     /// A standard atmosphere with changes.
     pub fn new(standard: Standard, changes: &Changes) -> Atmosphere {
-        let mut levels: Vec<Level> = table()
-            .iter()
-            .filter(|row| row.name == standard.name() && row.level.height <= TOP_KM)
-            .map(|row| changed(&row.level, changes))
+        let mut levels: Vec<Level> = standard
+            .levels()
+            .filter(|level| level.height <= TOP_KM)
+            .map(|level| changes.applied(level))
             .collect();
         levels = with_half_levels(&levels);
         add_so2(&mut levels, changes);
@@ -195,57 +116,6 @@ impl Atmosphere {
 pub(super) const AVOGADRO: f64 = 6.022_140_76e23;
 /// Molecules per cm2 in one Dobson unit.
 const DOBSON: f64 = 2.6868e16;
-
-struct Row {
-    name: &'static str,
-    level: Level,
-}
-
-/// The digitised tables, read once.
-fn table() -> &'static [Row] {
-    static TABLE: OnceLock<Vec<Row>> = OnceLock::new();
-    TABLE.get_or_init(|| include_str!("afgl_profiles.csv").lines().filter_map(row).collect())
-}
-
-/// One line of the table; comments and the heading are not numbers and fall out.
-fn row(line: &'static str) -> Option<Row> {
-    let (name, rest) = line.split_once(',')?;
-    let numbers: Vec<f64> =
-        rest.split(',').map(|cell| cell.trim().parse().ok()).collect::<Option<_>>()?;
-    let [height, pressure, temperature, _density, h2o, o3, n2o, co, ch4] = numbers[..] else {
-        return None;
-    };
-    let mut mixing_ratio = [0.0; Gas::ALL.len()];
-    for (gas, ppmv) in
-        [(Gas::H2o, h2o), (Gas::O3, o3), (Gas::N2o, n2o), (Gas::Co, co), (Gas::Ch4, ch4)]
-    {
-        mixing_ratio[gas.index()] = ppmv * 1e-6;
-    }
-    // Halocarbons are well mixed below the tropopause and decay above; nitric acid forms a layer.
-    let stratospheric_decay = (-(height - 12.0).max(0.0) / 6.0).exp();
-    mixing_ratio[Gas::Cfc11.index()] = 0.22e-9 * stratospheric_decay;
-    mixing_ratio[Gas::Cfc12.index()] = 0.49e-9 * stratospheric_decay;
-    mixing_ratio[Gas::Hno3.index()] = 7e-9 * (-((height - 22.0) / 5.0).powi(2)).exp();
-    Some(Row { name, level: Level { height, pressure, temperature, mixing_ratio } })
-}
-
-/// AFGL ground amounts that the tables are rescaled from, ppmv.
-const AFGL_CH4: f64 = 1.7;
-const AFGL_N2O: f64 = 0.32;
-
-fn changed(level: &Level, changes: &Changes) -> Level {
-    let mut level = *level;
-    level.temperature += changes.warming * (-level.height / changes.warming_depth).exp()
-        - changes.inversion * (-level.height / changes.inversion_depth).exp();
-    let amount = &mut level.mixing_ratio;
-    amount[Gas::H2o.index()] *= changes.water;
-    amount[Gas::O3.index()] *= changes.ozone;
-    amount[Gas::Co2.index()] = changes.co2_ppmv * 1e-6;
-    amount[Gas::Ch4.index()] *= changes.ch4_ppmv / AFGL_CH4;
-    amount[Gas::N2o.index()] *= changes.n2o_ppmv / AFGL_N2O;
-    amount[Gas::Co.index()] *= changes.co;
-    level
-}
 
 /// Levels halfway between the tabulated ones below 6 km, where clouds lie and water changes fast.
 fn with_half_levels(levels: &[Level]) -> Vec<Level> {
@@ -335,15 +205,6 @@ mod tests {
         Standard::SubarcticWinter,
         Standard::UsStandard,
     ];
-
-    #[test]
-    fn every_level_of_six_atmospheres_is_read() {
-        // 50 levels each: Anderson et al. 1986.
-        assert_eq!(table().len(), 300);
-        for standard in SIX {
-            assert_eq!(table().iter().filter(|row| row.name == standard.name()).count(), 50);
-        }
-    }
 
     #[test]
     fn columns_agree_with_the_published_totals() {

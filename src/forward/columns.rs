@@ -292,7 +292,7 @@ fn slant(level: &Level, zenith_angle: f64) -> f64 {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::forward::atmosphere::{Changes, Standard};
+    use crate::forward::{Changes, Standard};
 
     fn window(wavenumbers: &[f64]) -> Vec<Channel> {
         wavenumbers

@@ -5,6 +5,7 @@
 //! **Never** is truth for its own tests.
 
 mod atmosphere;
+mod changes;
 mod columns;
 mod continuum;
 mod exponential;
@@ -19,12 +20,15 @@ mod opacity;
 mod particles;
 mod pseudo_lines;
 mod response;
+mod standard;
 mod surface;
 
-pub use atmosphere::{Atmosphere, Changes, Level, Standard};
+pub use atmosphere::{Atmosphere, Level};
+pub use changes::Changes;
 pub use columns::{Channel, Column, View, columns};
 pub use footprint::{Cover, Footprint, Scenery};
 pub use gas::Gas;
 pub use particles::Particles;
 pub use response::Response;
+pub use standard::Standard;
 pub use surface::Surface;

@@ -90,7 +90,14 @@ pub(super) fn put_quality(
     file.put_all("quality", &bits.collect::<Vec<i8>>().into())
 }
 
-pub(super) fn put_truth(file: &mut NetcdfWriter, truths: &[Truth]) -> Result<(), WriterError> {
+pub(super) fn put_truth(
+    file: &mut NetcdfWriter,
+    maker: &Maker,
+    truths: &[Truth],
+) -> Result<(), WriterError> {
+    let plumes: [Column<Truth, f32>; 2] =
+        [("/truth/ash_optical_depth", |t| t.ash_optical_depth), ("/truth/so2_column", |t| t.so2)];
+    let plumes = if maker.has_plumes() { &plumes[..] } else { &[] };
     let values: [Column<Truth, f32>; 6] = [
         ("land_fraction", |t| t.land),
         ("/truth/cloud_amount", |t| t.cloud_amount),
@@ -99,7 +106,7 @@ pub(super) fn put_truth(file: &mut NetcdfWriter, truths: &[Truth]) -> Result<(),
         ("/truth/dust_optical_depth", |t| t.dust_optical_depth),
         ("/truth/surface_temperature", |t| t.surface_temperature),
     ];
-    for (name, value) in values {
+    for (name, value) in values.iter().chain(plumes) {
         let missing = |value: f32| if value.is_nan() { FLOAT_FILL } else { value };
         let values: Vec<f32> = truths.iter().map(|t| missing(value(t))).collect();
         file.put_all(name, &values.into())?;

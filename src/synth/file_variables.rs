@@ -155,6 +155,12 @@ const TRUTHS: [(&str, &str, &str, &str); 5] = [
     ("surface_temperature", "surface_temperature", "K", "temperature of the surface"),
 ];
 
+/// The same where a scene may have a plume.
+const PLUMES: [(&str, &str, &str, &str); 2] = [
+    ("ash_optical_depth", "", "1", "optical depth of volcanic ash at 909 cm-1"),
+    ("so2_column", "", "1", "sulphur dioxide above the footprint in Dobson units"),
+];
+
 pub(super) fn define_truth(
     file: &mut NetcdfWriter,
     maker: &Maker,
@@ -166,13 +172,14 @@ pub(super) fn define_truth(
             .attribute("coordinates", "latitude longitude")
             .deflate(5)
     };
-    for (name, standard_name, units, long_name) in TRUTHS {
+    let plumes = if maker.has_plumes() { &PLUMES[..] } else { &[] };
+    for (name, standard_name, units, long_name) in TRUTHS.iter().chain(plumes) {
         let mut variable = draft(name, ValueKind::F32)
-            .attribute("long_name", long_name)
-            .attribute("units", units)
+            .attribute("long_name", *long_name)
+            .attribute("units", *units)
             .fill(FLOAT_FILL);
         if !standard_name.is_empty() {
-            variable = variable.attribute("standard_name", standard_name);
+            variable = variable.attribute("standard_name", *standard_name);
         }
         file.variable(&variable)?;
     }

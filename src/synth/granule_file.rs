@@ -105,7 +105,7 @@ fn write(
         truths.extend(made.iter().map(|made| made.truth));
     }
     put_quality(&mut file, &geometry, &truths)?;
-    put_truth(&mut file, &truths)?;
+    put_truth(&mut file, maker, &truths)?;
     file.close()?;
     Ok(())
 }
@@ -134,10 +134,13 @@ fn describe(
             "source",
             format!(
                 "synthetic: forward model with approximate spectroscopy; imaginary Brindle sounder \
-                 ({}); scene {}, seed {}",
+                 ({}); scene {}, seed {}{}",
                 maker.instrument.description,
                 recipe.scene.label(),
-                recipe.seed
+                recipe.seed,
+                recipe.perturbed.map_or_else(String::new, |seed| format!(
+                    ", air, ground, clouds and noise perturbed from seed {seed}"
+                ))
             ),
         ),
         (

@@ -11,6 +11,7 @@ mod file_variables;
 mod granule_file;
 mod instrument;
 mod noise;
+mod perturbation;
 mod recipe;
 mod scene;
 mod scenes;

@@ -1,6 +1,9 @@
 //! What makes a granule: the same recipe gives the same values on any machine.
 
+use super::defects::Defect;
 use super::instrument::Instrument;
+use super::perturbation::Perturbation;
+use super::scene::Setting;
 use super::scenes::SceneName;
 use super::shape::Shape;
 use super::swath::Swath;
@@ -14,6 +17,8 @@ pub struct Recipe {
     pub shape: Shape,
     /// What its random numbers grow from.
     pub seed: u64,
+    /// What another climate is drawn from; `None` for the scene as it is.
+    pub perturbed: Option<u64>,
 }
 
 /// The seed of the sample granules.
@@ -31,21 +36,43 @@ impl Recipe {
             DEFAULT_SEED => String::new(),
             seed => format!("_seed{seed}"),
         };
-        format!("synthetic_brindle_{scene}{shape}{seed}.nc")
+        let perturbed = self.perturbed.map_or_else(String::new, |seed| format!("_perturbed{seed}"));
+        format!("synthetic_brindle_{scene}{shape}{seed}{perturbed}.nc")
     }
 
     /// The command that follows this recipe.
     pub fn command(&self) -> String {
+        let perturbed =
+            self.perturbed.map_or_else(String::new, |seed| format!(" --perturbed {seed}"));
         format!(
-            "radsieve synth --scene {} --shape {} --seed {}",
+            "radsieve synth --scene {} --shape {} --seed {}{perturbed}",
             self.scene.label(),
             self.shape.label(),
             self.seed
         )
     }
 
-    pub(super) fn instrument(&self) -> (Instrument, Swath) {
-        self.shape.instrument(self.scene)
+    pub(super) fn perturbation(&self) -> Option<Perturbation> {
+        self.perturbed.map(|seed| Perturbation::drawn(seed, self.scene as u64))
+    }
+
+    /// When and where.
+    pub(super) fn setting(&self) -> Setting {
+        let setting = self.scene.setting();
+        self.perturbation().map_or(setting, |perturbation| perturbation.of_setting(setting))
+    }
+
+    /// The instrument, how it scans, and what is wrong with it.
+    pub(super) fn instrument(&self) -> (Instrument, Swath, Vec<Defect>) {
+        let (mut instrument, mut swath) = self.shape.instrument(self.scene, &self.setting());
+        let defects = match self.perturbation() {
+            None => self.scene.defects().to_vec(),
+            Some(perturbation) => {
+                perturbation.of_instrument(&mut instrument, &mut swath);
+                perturbation.defects(&instrument, &swath)
+            }
+        };
+        (instrument, swath, defects)
     }
 }
 
@@ -55,11 +82,15 @@ mod tests {
 
     #[test]
     fn names_say_what_is_inside() {
-        let recipe = |shape, seed| Recipe { scene: SceneName::SeaOfLowen, shape, seed };
+        let recipe =
+            |shape, seed| Recipe { scene: SceneName::SeaOfLowen, shape, seed, perturbed: None };
         assert_eq!(recipe(Shape::Sample, 1).file_name(), "synthetic_brindle_sea_of_lowen.nc");
         assert_eq!(
             recipe(Shape::Grating, 7).file_name(),
             "synthetic_brindle_sea_of_lowen_grating_seed7.nc"
         );
+        let perturbed = Recipe { perturbed: Some(3), ..recipe(Shape::Sample, 7) };
+        assert_eq!(perturbed.file_name(), "synthetic_brindle_sea_of_lowen_seed7_perturbed3.nc");
+        assert!(perturbed.command().ends_with("--seed 7 --perturbed 3"));
     }
 }

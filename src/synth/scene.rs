@@ -1,7 +1,7 @@
 //! What a scene is: the air over it, and what each footprint looks at.
 
 use super::swath::Position;
-use crate::forward::{Atmosphere, Cover, Footprint, Particles, Surface};
+use crate::forward::{Changes, Cover, Footprint, Particles, Standard, Surface};
 
 /// A footprint for which a scene is asked.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -25,6 +25,8 @@ pub struct Sighted {
     pub footprint: Footprint,
     /// Share of land.
     pub land: f64,
+    /// Sulphur dioxide above the footprint, Dobson units.
+    pub so2: f64,
 }
 
 /// When and where a scene lies.
@@ -40,12 +42,14 @@ pub struct Setting {
     pub time: f64,
     /// Whether sunlight matters.
     pub by_day: bool,
+    /// Whether the scene may as well be seen half a day later: open sea, whose warmth stays.
+    pub any_hour: bool,
 }
 
 /// A scene: fields that were drawn from a seed.
 pub trait Scene: Sync {
-    /// The atmospheres that footprints mix.
-    fn airs(&self) -> Vec<Atmosphere>;
+    /// The atmospheres that footprints mix: standard ones with changes.
+    fn airs(&self) -> Vec<(Standard, Changes)>;
     /// What stands in one footprint.
     fn look(&self, spot: &Spot) -> Sighted;
 }

@@ -1,6 +1,7 @@
 //! The size of a granule, as it is asked for.
 
 use super::instrument::Instrument;
+use super::scene::Setting;
 use super::scenes::SceneName;
 use super::swath::Swath;
 
@@ -76,7 +77,7 @@ impl Shape {
     }
 
     /// The instrument, and how it scans the scene.
-    pub(super) fn instrument(self, scene: SceneName) -> (Instrument, Swath) {
+    pub(super) fn instrument(self, scene: SceneName, setting: &Setting) -> (Instrument, Swath) {
         let (mut instrument, lines, positions) = match self {
             Shape::Sample => scene.sample(),
             Shape::Interferometer => (Instrument::interferometer(), 45, 30),
@@ -95,7 +96,6 @@ impl Shape {
             instrument.detector_step *= widest / instrument.position_step;
             instrument.position_step = widest;
         }
-        let setting = scene.setting();
         let swath = Swath {
             centre: setting.centre,
             heading: setting.heading,
@@ -133,7 +133,7 @@ mod tests {
     #[test]
     fn samples_have_enough_footprints_for_a_scene() {
         for scene in SceneName::ALL {
-            let (_, swath) = Shape::Sample.instrument(scene);
+            let (_, swath) = Shape::Sample.instrument(scene, &scene.setting());
             assert!(swath.lines * swath.positions * swath.detectors() >= 1500);
         }
     }

@@ -5,12 +5,13 @@ use rayon::prelude::*;
 use super::defects::{Faults, Place, REPEATED_LINE};
 use super::instrument::Instrument;
 use super::noise::noise;
+use super::perturbation::Perturbation;
 use super::recipe::Recipe;
 use super::scene::{Scene, Sighted, Spot};
 use super::sun::sun_angles;
-use super::swath::{Sight, Swath};
+use super::swath::{Position, Sight, Swath};
 use super::truth::Truth;
-use crate::forward::{Channel, Scenery, View};
+use crate::forward::{Atmosphere, Changes, Channel, Scenery, Standard, View};
 
 /// Everything that a granule's spectra are made from.
 pub struct Maker {
@@ -19,6 +20,8 @@ pub struct Maker {
     pub swath: Swath,
     pub faults: Faults,
     scene: Box<dyn Scene>,
+    perturbation: Option<Perturbation>,
+    centre: Position,
     scenery: Scenery,
 }
 
@@ -49,9 +52,13 @@ impl Maker {
     /// Draws the scene and computes the columns of air: the part that takes time before the first
     /// scan line.
     pub fn new(recipe: Recipe) -> Maker {
-        let (instrument, swath) = recipe.instrument();
+        let (instrument, swath, defects) = recipe.instrument();
         let scene = recipe.scene.scene(recipe.seed);
-        let setting = recipe.scene.setting();
+        let setting = recipe.setting();
+        let perturbation = recipe.perturbation();
+        // A perturbed scan may look far to one side: the scene lies where it looks.
+        let middle = swath.sight(swath.lines / 2, swath.positions / 2, swath.detectors() / 2);
+        let centre = perturbation.as_ref().map_or(setting.centre, |_| middle.position);
         let channels: Vec<Channel> = instrument
             .bands
             .iter()
@@ -68,9 +75,19 @@ impl Maker {
             sun_zenith: sun,
             cloud_heights: CLOUD_HEIGHTS.to_vec(),
         };
-        let scenery = Scenery::new(scene.airs(), &channels, view);
-        let faults = Faults::new(recipe.scene.defects(), &instrument, &swath, recipe.seed);
-        Maker { recipe, instrument, swath, faults, scene, scenery }
+        let air = |(standard, changes): (Standard, Changes)| match &perturbation {
+            Some(perturbation) => Atmosphere::new(standard, &perturbation.of_air(&changes)),
+            None => Atmosphere::new(standard, &changes),
+        };
+        let airs = scene.airs().into_iter().map(air).collect();
+        let scenery = Scenery::new(airs, &channels, view);
+        let faults = Faults::new(&defects, &instrument, &swath, recipe.seed);
+        Maker { recipe, instrument, swath, faults, scene, perturbation, centre, scenery }
+    }
+
+    /// Whether there may be ash or sulphur dioxide, so that the truth tells how much.
+    pub fn has_plumes(&self) -> bool {
+        self.recipe.scene.has_plumes()
     }
 
     /// Geometry of every footprint, row-major.
@@ -142,7 +159,7 @@ impl Maker {
 
     fn look(&self, footprint: usize) -> (Sighted, Truth) {
         let geometry = self.geometry_of(footprint);
-        let centre = self.recipe.scene.setting().centre;
+        let centre = self.centre;
         let sight = geometry.sight;
         let east = (sight.position.longitude - centre.longitude + 540.0).rem_euclid(360.0) - 180.0;
         let secant = 1.0 / sight.view_zenith.to_radians().cos();
@@ -154,6 +171,10 @@ impl Maker {
             sun_zenith: geometry.sun_zenith,
         };
         let sighted = self.scene.look(&spot);
+        let sighted = match &self.perturbation {
+            Some(perturbation) => perturbation.of_sight(sighted),
+            None => sighted,
+        };
         let truth =
             Truth::of(&sighted, |height| self.scenery.pressure(sighted.footprint.air, height));
         (sighted, truth)

@@ -16,6 +16,10 @@ pub struct Truth {
     pub cloud_phase: i8,
     /// Optical depth of dust at 961 cm-1.
     pub dust_optical_depth: f32,
+    /// Optical depth of ash at 909 cm-1.
+    pub ash_optical_depth: f32,
+    /// Sulphur dioxide, Dobson units.
+    pub so2: f32,
     /// Surface temperature, K.
     pub surface_temperature: f32,
     /// Share of land.
@@ -39,7 +43,10 @@ impl Truth {
         let clear: f64 = clouds().map(|cloud| 1.0 - cloud.amount).product();
         // Covers ascend in height.
         let highest = clouds().next_back();
-        let dust = sighted.footprint.covers.iter().filter(|c| c.particles == Particles::Dust);
+        let depth_of = |kind: Particles| {
+            let covers = sighted.footprint.covers.iter().filter(move |c| c.particles == kind);
+            covers.map(|c| c.amount * c.optical_depth).sum::<f64>() as f32
+        };
         Truth {
             cloud_amount: (1.0 - clear) as f32,
             cloud_optical_depth: clouds().map(|c| c.amount * c.optical_depth).sum::<f64>() as f32,
@@ -48,7 +55,9 @@ impl Truth {
                 Particles::SmallDroplets | Particles::Droplets => 1,
                 _ => 2,
             }),
-            dust_optical_depth: dust.map(|c| c.amount * c.optical_depth).sum::<f64>() as f32,
+            dust_optical_depth: depth_of(Particles::Dust),
+            ash_optical_depth: depth_of(Particles::Ash),
+            so2: sighted.so2 as f32,
             surface_temperature: sighted.footprint.surface_temperature as f32,
             land: sighted.land as f32,
             defects: 0,
@@ -69,7 +78,8 @@ mod tests {
         cover(&mut footprint, Particles::Ice, 10.0, 0.5, 1.0);
         cover(&mut footprint, Particles::Droplets, 1.0, 0.5, 8.0);
         cover(&mut footprint, Particles::Dust, 3.0, 1.0, 0.4);
-        let truth = Truth::of(&Sighted { footprint, land: 0.0 }, |height| 1000.0 - 70.0 * height);
+        let truth =
+            Truth::of(&Sighted { footprint, land: 0.0, so2: 0.0 }, |height| 1000.0 - 70.0 * height);
         assert_eq!(truth.cloud_amount, 0.75);
         assert_eq!((truth.cloud_phase, truth.cloud_top_pressure), (2, 300.0));
         assert_eq!((truth.dust_optical_depth, truth.cloud_optical_depth), (0.4, 4.5));

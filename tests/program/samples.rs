@@ -53,7 +53,7 @@ fn quantum(file: &FileReader, variable: &Variable, number: usize) -> f64 {
 #[test]
 fn the_sample_granules_come_out_of_their_recipes_again() {
     let folder = tempfile::tempdir().unwrap();
-    synth(folder.path(), &["--scene", "all", "--shape", "sample"]).assert().success();
+    synth(folder.path(), &["--scene", "samples", "--shape", "sample"]).assert().success();
     let mut compared = 0;
     for entry in std::fs::read_dir(folder.path()).unwrap() {
         let path = entry.unwrap().path();
@@ -143,6 +143,56 @@ fn bytes_do_not_depend_on_the_number_of_threads() {
 }
 
 #[test]
+fn a_perturbed_granule_is_another_one_that_can_be_made_again() {
+    let make = |more: &[&str]| {
+        let folder = tempfile::tempdir().unwrap();
+        let mut arguments = vec!["--scene", "hesk-isles", "--shape", "2x4", "--seed", "9"];
+        arguments.extend(more);
+        synth(folder.path(), &arguments).assert().success();
+        let entry = std::fs::read_dir(folder.path()).unwrap().next().unwrap().unwrap();
+        let file = open(&entry.path());
+        let radiances = values(&file, variable(&file, "radiance")).to_f64();
+        (entry.file_name(), radiances, std::fs::read(entry.path()).unwrap())
+    };
+    let (plain, perturbed) = (make(&[]), make(&["--perturbed", "4"]));
+    assert_eq!(perturbed.0, "synthetic_brindle_hesk_isles_2x4_seed9_perturbed4.nc");
+    assert_ne!(plain.1, perturbed.1);
+    assert_eq!(perturbed.2, make(&["--perturbed", "4"]).2);
+    assert_ne!(perturbed.1, make(&["--perturbed", "5"]).1);
+}
+
+#[test]
+fn ash_and_sulphur_dioxide_stand_in_the_truth_where_they_stand_in_the_spectra() {
+    let folder = tempfile::tempdir().unwrap();
+    synth(folder.path(), &["--scene", "hesk-isles", "--shape", "20x30"]).assert().success();
+    let file = open(&folder.path().join("synthetic_brindle_hesk_isles_20x30.nc"));
+    let truth = |name: &str| values(&file, variable(&file, &format!("truth/{name}"))).to_f64();
+    let axis = values(&file, variable(&file, "wavenumber")).to_f64();
+    let radiances = values(&file, variable(&file, "radiance")).to_f64();
+    let near = |wanted: f64| {
+        let distance = |at: &usize| (axis[*at] - wanted).abs();
+        (0..axis.len()).min_by(|a, b| distance(a).total_cmp(&distance(b))).unwrap()
+    };
+    let mean_ratio = |column: &[f64], wanted: &dyn Fn(f64) -> bool, pair: (f64, f64)| {
+        let (a, b) = (near(pair.0), near(pair.1));
+        let ratios: Vec<f64> = (0..column.len())
+            .filter(|at| wanted(column[*at]))
+            .map(|at| radiances[at * axis.len() + a] / radiances[at * axis.len() + b])
+            .collect();
+        assert!(ratios.len() > 20);
+        ratios.iter().sum::<f64>() / ratios.len() as f64
+    };
+    // Ash absorbs more at 961 than at 831 cm-1, the gas at 1362 but not at 1410 cm-1; clouds are
+    // alike inside and outside of the plumes.
+    let (ash, so2) = (truth("ash_optical_depth"), truth("so2_column"));
+    for (column, much, pair) in [(&ash, 0.5, (961.1, 831.0)), (&so2, 20.0, (1362.0, 1410.0))] {
+        let (inside, outside) =
+            (mean_ratio(column, &|v| v > much, pair), mean_ratio(column, &|v| v == 0.0, pair));
+        assert!(inside < 0.98 * outside, "{inside} {outside}");
+    }
+}
+
+#[test]
 fn nothing_is_overwritten_unasked() {
     let folder = tempfile::tempdir().unwrap();
     let file = folder.path().join("synthetic_brindle_ketter_desert_1x2.nc");
@@ -168,7 +218,8 @@ fn the_help_lists_scenes_and_shapes() {
     let mut command = Command::cargo_bin("radsieve").unwrap();
     let assert = command.env_clear().args(["synth", "--help"]).assert().success();
     let help = String::from_utf8(assert.get_output().stdout.clone()).unwrap();
-    for word in ["sea-of-lowen", "ketter-desert", "norrik-plateau", "strait-of-pell"] {
+    for word in ["sea-of-lowen", "ketter-desert", "norrik-plateau", "strait-of-pell", "hesk-isles"]
+    {
         assert!(help.contains(word), "{word}");
     }
     for word in ["interferometer", "grating", "20x30x9"] {

@@ -1,6 +1,6 @@
 use super::*;
-use crate::forward::atmosphere::{Changes, Standard};
 use crate::forward::response::Response;
+use crate::forward::{Changes, Standard};
 
 /// Brightness temperature, K.
 fn bt(wavenumber: f64, radiance: f32) -> f64 {

@@ -1,6 +1,6 @@
 //! The Ketter Desert: quartz sand under the afternoon sun, with a plume of dust.
 
-use crate::forward::{Atmosphere, Changes, Particles, Standard, Surface};
+use crate::forward::{Changes, Particles, Standard, Surface};
 use crate::synth::defects::Defect;
 use crate::synth::field::{Field, over_footprint, ramp};
 use crate::synth::scene::{Scene, Setting, Sighted, Spot, clear, cover, seconds_in_2026};
@@ -13,6 +13,7 @@ pub(super) const SETTING: Setting = Setting {
     // Half past one in the afternoon by the sun.
     time: seconds_in_2026(152, 10.7),
     by_day: true,
+    any_hour: false,
 };
 
 /// A real array has channels that are noisier than their neighbours; two of them here.
@@ -51,10 +52,10 @@ impl KetterDesert {
 }
 
 impl Scene for KetterDesert {
-    fn airs(&self) -> Vec<Atmosphere> {
+    fn airs(&self) -> Vec<(Standard, Changes)> {
         let air = |water, warming| {
             let changes = Changes { water, warming, ..Changes::default() };
-            Atmosphere::new(Standard::MidlatitudeSummer, &changes)
+            (Standard::MidlatitudeSummer, changes)
         };
         vec![air(0.35, 8.0), air(0.65, 6.0)]
     }
@@ -79,6 +80,6 @@ impl Scene for KetterDesert {
         let streak = self.cirrus.at(spot.x, spot.y) - spot.x / 330.0 - 0.9;
         let thin = 0.6 * ramp(streak, 0.0, 1.8);
         cover(&mut footprint, Particles::SmallIce, 11.2, ramp(streak, 0.0, 0.4), thin);
-        Sighted { footprint, land: 1.0 }
+        Sighted { footprint, land: 1.0, so2: 0.0 }
     }
 }

@@ -1,5 +1,8 @@
 //! The scenes, each an imaginary place.
 
+mod gulf_of_tamber;
+mod hesk_isles;
+mod iskel_sound;
 mod ketter_desert;
 mod norrik_plateau;
 mod sea_of_lowen;
@@ -20,11 +23,28 @@ pub enum SceneName {
     NorrikPlateau,
     /// Two coasts and the sea between them by day: stratocumulus, a front.
     StraitOfPell,
+    /// Warm sea by day: dust, cumulus, cirrus.
+    GulfOfTamber,
+    /// Winter sea by night: volcanic ash, sulphur dioxide, a front.
+    HeskIsles,
+    /// Polar winter: open water, ice, clouds of all heights.
+    IskelSound,
 }
 
 impl SceneName {
     /// Every scene.
-    pub const ALL: [SceneName; 4] = [
+    pub const ALL: [SceneName; 7] = [
+        SceneName::SeaOfLowen,
+        SceneName::KetterDesert,
+        SceneName::NorrikPlateau,
+        SceneName::StraitOfPell,
+        SceneName::GulfOfTamber,
+        SceneName::HeskIsles,
+        SceneName::IskelSound,
+    ];
+
+    /// The scenes of the sample granules.
+    pub const SAMPLES: [SceneName; 4] = [
         SceneName::SeaOfLowen,
         SceneName::KetterDesert,
         SceneName::NorrikPlateau,
@@ -38,6 +58,9 @@ impl SceneName {
             SceneName::KetterDesert => "ketter-desert",
             SceneName::NorrikPlateau => "norrik-plateau",
             SceneName::StraitOfPell => "strait-of-pell",
+            SceneName::GulfOfTamber => "gulf-of-tamber",
+            SceneName::HeskIsles => "hesk-isles",
+            SceneName::IskelSound => "iskel-sound",
         }
     }
 
@@ -48,6 +71,9 @@ impl SceneName {
             SceneName::KetterDesert => "Ketter Desert",
             SceneName::NorrikPlateau => "Norrik Plateau",
             SceneName::StraitOfPell => "Strait of Pell",
+            SceneName::GulfOfTamber => "Gulf of Tamber",
+            SceneName::HeskIsles => "Hesk Isles",
+            SceneName::IskelSound => "Iskel Sound",
         }
     }
 
@@ -64,7 +90,17 @@ impl SceneName {
             SceneName::StraitOfPell => {
                 "two coasts and a strait by day with stratocumulus and a front"
             }
+            SceneName::GulfOfTamber => "warm sea by day with a tongue of dust, cumulus and cirrus",
+            SceneName::HeskIsles => {
+                "winter sea by night with volcanic ash, sulphur dioxide and a front"
+            }
+            SceneName::IskelSound => "polar winter over open water and ice with clouds",
         }
+    }
+
+    /// Whether there may be ash or sulphur dioxide.
+    pub fn has_plumes(self) -> bool {
+        self == SceneName::HeskIsles
     }
 
     /// When and where.
@@ -74,6 +110,9 @@ impl SceneName {
             SceneName::KetterDesert => ketter_desert::SETTING,
             SceneName::NorrikPlateau => norrik_plateau::SETTING,
             SceneName::StraitOfPell => strait_of_pell::SETTING,
+            SceneName::GulfOfTamber => gulf_of_tamber::SETTING,
+            SceneName::HeskIsles => hesk_isles::SETTING,
+            SceneName::IskelSound => iskel_sound::SETTING,
         }
     }
 
@@ -84,6 +123,9 @@ impl SceneName {
             SceneName::KetterDesert => Box::new(ketter_desert::KetterDesert::new(seed)),
             SceneName::NorrikPlateau => Box::new(norrik_plateau::NorrikPlateau::new(seed)),
             SceneName::StraitOfPell => Box::new(strait_of_pell::StraitOfPell::new(seed)),
+            SceneName::GulfOfTamber => Box::new(gulf_of_tamber::GulfOfTamber::new(seed)),
+            SceneName::HeskIsles => Box::new(hesk_isles::HeskIsles::new(seed)),
+            SceneName::IskelSound => Box::new(iskel_sound::IskelSound::new(seed)),
         }
     }
 
@@ -94,6 +136,10 @@ impl SceneName {
             SceneName::KetterDesert => (Instrument::desert_grating(), 40, 40),
             SceneName::NorrikPlateau => (Instrument::fine_interferometer(), 21, 20),
             SceneName::StraitOfPell => (Instrument::strait_grating(), 40, 42),
+            SceneName::GulfOfTamber => (Instrument::strait_grating(), 40, 42),
+            SceneName::HeskIsles | SceneName::IskelSound => {
+                (Instrument::reduced_interferometer(), 13, 14)
+            }
         }
     }
 
@@ -102,7 +148,7 @@ impl SceneName {
         match self {
             SceneName::NorrikPlateau => norrik_plateau::DEFECTS,
             SceneName::KetterDesert => ketter_desert::DEFECTS,
-            SceneName::SeaOfLowen | SceneName::StraitOfPell => &[],
+            _ => &[],
         }
     }
 }

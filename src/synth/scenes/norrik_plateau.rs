@@ -1,6 +1,6 @@
 //! The Norrik Plateau: snow in the polar night, with an instrument that has seen better days.
 
-use crate::forward::{Atmosphere, Changes, Particles, Standard, Surface};
+use crate::forward::{Changes, Particles, Standard, Surface};
 use crate::synth::defects::Defect;
 use crate::synth::field::{Field, over_footprint, ramp};
 use crate::synth::scene::{Scene, Setting, Sighted, Spot, clear, cover, seconds_in_2026};
@@ -12,6 +12,7 @@ pub(super) const SETTING: Setting = Setting {
     middle_angle: -4.0,
     time: seconds_in_2026(11, 20.4),
     by_day: false,
+    any_hour: false,
 };
 
 /// Everything that can be wrong, one of each.
@@ -52,7 +53,7 @@ impl NorrikPlateau {
 }
 
 impl Scene for NorrikPlateau {
-    fn airs(&self) -> Vec<Atmosphere> {
+    fn airs(&self) -> Vec<(Standard, Changes)> {
         INVERSIONS
             .iter()
             .map(|inversion| {
@@ -62,7 +63,7 @@ impl Scene for NorrikPlateau {
                     ozone: 0.95,
                     ..Changes::default()
                 };
-                Atmosphere::new(Standard::SubarcticWinter, &changes)
+                (Standard::SubarcticWinter, changes)
             })
             .collect()
     }
@@ -89,6 +90,6 @@ impl Scene for NorrikPlateau {
             ramp(veil, 0.0, 0.4),
             0.9 * ramp(veil, 0.0, 1.8),
         );
-        Sighted { footprint, land: 1.0 }
+        Sighted { footprint, land: 1.0, so2: 0.0 }
     }
 }

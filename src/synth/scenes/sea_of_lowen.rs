@@ -1,6 +1,6 @@
 //! The Sea of Lowen: warm, moist, by night.
 
-use crate::forward::{Atmosphere, Changes, Particles, Standard, Surface};
+use crate::forward::{Changes, Particles, Standard, Surface};
 use crate::synth::field::{Field, over_footprint, ramp};
 use crate::synth::scene::{Scene, Setting, Sighted, Spot, clear, cover, seconds_in_2026};
 use crate::synth::swath::Position;
@@ -12,6 +12,7 @@ pub(super) const SETTING: Setting = Setting {
     // Half past one at night by the sun.
     time: seconds_in_2026(257, 3.6),
     by_day: false,
+    any_hour: true,
 };
 
 /// Middle of the convective core, km.
@@ -54,10 +55,9 @@ impl SeaOfLowen {
 }
 
 impl Scene for SeaOfLowen {
-    fn airs(&self) -> Vec<Atmosphere> {
-        let air = |water, warming| {
-            Atmosphere::new(Standard::Tropical, &Changes { water, warming, ..Changes::default() })
-        };
+    fn airs(&self) -> Vec<(Standard, Changes)> {
+        let air =
+            |water, warming| (Standard::Tropical, Changes { water, warming, ..Changes::default() });
         vec![air(0.72, -1.6), air(0.9, -0.4), air(1.08, 0.4)]
     }
 
@@ -77,6 +77,6 @@ impl Scene for SeaOfLowen {
         let storm = over_footprint(spot.x, spot.y, spot.radius, |x, y| self.storm_depth(x, y));
         let kind = if storm > 5.0 { Particles::LargeIce } else { Particles::Ice };
         cover(&mut footprint, kind, self.storm_top(storm), ramp(storm, 0.01, 0.4), storm);
-        Sighted { footprint, land: 0.0 }
+        Sighted { footprint, land: 0.0, so2: 0.0 }
     }
 }

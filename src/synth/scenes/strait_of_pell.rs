@@ -1,6 +1,6 @@
 //! The Strait of Pell: two coasts, islands, stratocumulus and a front, by day.
 
-use crate::forward::{Atmosphere, Changes, Particles, Standard, Surface};
+use crate::forward::{Changes, Particles, Standard, Surface};
 use crate::synth::field::{Field, over_footprint, ramp};
 use crate::synth::scene::{Scene, Setting, Sighted, Spot, clear, cover, seconds_in_2026};
 use crate::synth::swath::Position;
@@ -11,6 +11,7 @@ pub(super) const SETTING: Setting = Setting {
     middle_angle: 11.0,
     time: seconds_in_2026(118, 14.9),
     by_day: true,
+    any_hour: false,
 };
 
 pub(super) struct StraitOfPell {
@@ -44,10 +45,10 @@ impl StraitOfPell {
 }
 
 impl Scene for StraitOfPell {
-    fn airs(&self) -> Vec<Atmosphere> {
+    fn airs(&self) -> Vec<(Standard, Changes)> {
         let air = |water, warming| {
             let changes = Changes { water, warming, ..Changes::default() };
-            Atmosphere::new(Standard::MidlatitudeSummer, &changes)
+            (Standard::MidlatitudeSummer, changes)
         };
         vec![air(0.45, -6.0), air(0.75, -3.5)]
     }
@@ -77,6 +78,6 @@ impl Scene for StraitOfPell {
         cover(&mut footprint, Particles::Droplets, 4.6 + 1.2 * layered, layered, 14.0 * layered);
         let high = ramp(ahead + 55.0 * self.cirrus.at(spot.x, spot.y), -190.0, 60.0);
         cover(&mut footprint, Particles::Ice, 10.2, ramp(high, 0.0, 0.3), 1.5 * high * high);
-        Sighted { footprint, land }
+        Sighted { footprint, land, so2: 0.0 }
     }
 }
