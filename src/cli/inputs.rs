@@ -180,10 +180,20 @@ impl Inputs {
         if files.is_empty() {
             return Err(UsageError("no input files: name files, folders or globs".into()).into());
         }
+        // Masks that were exported beside their granules come with every glob. Named alone they
+        // stay, and the reader says that they hold no spectra.
+        if !files.iter().all(|file| is_mask(file)) {
+            files.retain(|file| !is_mask(file));
+        }
         let mut seen = HashSet::new();
         files.retain(|file| seen.insert(same_file(file)));
         Ok(files)
     }
+}
+
+/// Whether a file goes by the name of a mask of ours.
+fn is_mask(path: &Path) -> bool {
+    path.file_name().is_some_and(|name| name.as_bytes().ends_with(b".mask.nc"))
 }
 
 /// Two ways to one file are one file.
@@ -321,6 +331,15 @@ mod tests {
         let folder = folder(&["g1.nc"]);
         std::os::unix::fs::symlink("/no/g2.nc", folder.path().join("g2.nc")).unwrap();
         assert_eq!(expanded(&[folder.path().to_owned()], "").unwrap(), ["g1.nc", "g2.nc"]);
+    }
+
+    #[test]
+    fn masks_beside_their_granules_are_no_granules() {
+        let folder = folder(&["a.nc", "a.mask.nc", "b-0f3.mask.nc"]);
+        assert_eq!(expanded(&[folder.path().to_owned()], "").unwrap(), ["a.nc"]);
+        let both = ["a.nc", "a.mask.nc"].map(|name| folder.path().join(name));
+        assert_eq!(expanded(&both, "").unwrap(), ["a.nc"]);
+        assert_eq!(expanded(&both[1..], "").unwrap(), ["a.mask.nc"]);
     }
 
     #[test]

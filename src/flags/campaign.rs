@@ -6,6 +6,8 @@ use std::path::{Path, PathBuf};
 
 use serde::{Deserialize, Serialize};
 
+use super::ledger_line::Header;
+use super::ledger_lines::Lines;
 use super::{CampaignSettings, file_name_part};
 
 /// Which granule a ledger is about: its content, not its path.
@@ -150,6 +152,19 @@ impl Campaign {
         names.filter_map(|name| Some(name.rsplit_once('-')?.0.to_owned())).collect()
     }
 
+    /// Sizes in bytes of the granules whose ledgers were begun under none of these stems: a file of
+    /// such a size may be one of them, renamed since. Reads the first line of one ledger each.
+    pub fn sizes_under_other_stems(&self, stems: &BTreeSet<String>) -> BTreeSet<u64> {
+        let Ok(entries) = std::fs::read_dir(self.folder.join(LEDGERS)) else {
+            return BTreeSet::new();
+        };
+        let others = entries.flatten().filter(|entry| {
+            let name = entry.file_name().to_string_lossy().into_owned();
+            name.rsplit_once('-').is_some_and(|(stem, _)| !stems.contains(stem))
+        });
+        others.filter_map(|folder| size_named_in(&folder.path())).collect()
+    }
+
     /// The folders that hold ledgers of a granule, sorted. More than one where the file was renamed
     /// and two people began at the same moment.
     pub(super) fn ledger_folders(&self, granule: &GranuleIdentity) -> io::Result<Vec<PathBuf>> {
@@ -182,6 +197,18 @@ impl Campaign {
             self.folder.join(LEDGERS).join(name)
         }))
     }
+}
+
+/// The size of the granule that the ledgers in a folder are about, by the first header that can be
+/// read.
+fn size_named_in(folder: &Path) -> Option<u64> {
+    let files = std::fs::read_dir(folder).ok()?.flatten();
+    let header = |file: std::fs::DirEntry| {
+        let mut lines = Lines::new(std::fs::File::open(file.path()).ok()?);
+        let line = lines.next().ok()??;
+        Header::parse(line.text.ok()?).ok()
+    };
+    files.filter_map(header).map(|header| header.granule.size).next()
 }
 
 /// The folder of the ledgers in the campaign folder.

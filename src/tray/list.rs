@@ -1,6 +1,7 @@
 //! The granules in hand, in the order in which they were named.
 
-use std::path::PathBuf;
+use std::collections::BTreeSet;
+use std::path::{Path, PathBuf};
 
 use crate::flags::{Campaign, GranuleState, file_name_part};
 use crate::system::clean_text;
@@ -48,13 +49,18 @@ impl Tray {
         }
     }
 
-    /// Takes granules for untouched that no ledger of the campaign goes by the name of. One that
-    /// was renamed since shows its true state when it is opened, because ledgers go by content.
+    /// Takes granules for untouched that no ledger of the campaign can be about: none goes by the
+    /// name, and none under another name is about a file of this size, as it would be if the file
+    /// had been renamed since. Of the others only their content tells.
     pub fn take_for_untouched(&mut self, campaign: &Campaign) {
         let stems = campaign.ledger_stems();
+        let own: BTreeSet<String> = self.entries.iter().map(|entry| stem(&entry.path)).collect();
+        let renamed = campaign.sizes_under_other_stems(&own);
+        let size = |path: &Path| std::fs::metadata(path).map(|data| data.len());
         for entry in self.entries.iter_mut().filter(|entry| entry.standing.is_none()) {
-            let stem = entry.path.file_stem().unwrap_or_default().to_string_lossy();
-            if !stems.contains(&file_name_part(&stem)) {
+            let may_be_renamed =
+                !renamed.is_empty() && size(&entry.path).is_ok_and(|size| renamed.contains(&size));
+            if !stems.contains(&stem(&entry.path)) && !may_be_renamed {
                 entry.standing = Some(Standing { state: GranuleState::Untouched, counts: None });
             }
         }
@@ -96,6 +102,11 @@ impl Tray {
     fn is_usable(&self, number: usize) -> bool {
         self.entries.get(number).is_some_and(|entry| entry.error.is_none())
     }
+}
+
+/// A file's stem as the names of ledger folders have it.
+fn stem(path: &Path) -> String {
+    file_name_part(&path.file_stem().unwrap_or_default().to_string_lossy())
 }
 
 #[cfg(test)]
