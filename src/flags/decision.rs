@@ -6,6 +6,7 @@ use jiff::Timestamp;
 use serde::{Deserialize, Serialize};
 
 use super::{FootprintSet, SpotCheck};
+use crate::system::clean_text;
 
 /// Names one decision for ever.
 #[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord, Hash, Serialize, Deserialize)]
@@ -216,6 +217,14 @@ impl Decision {
     /// Whether a person speaks.
     pub fn by_person(&self) -> bool {
         self.origin == Origin::Person
+    }
+
+    /// Whose word it is, fit for the screen: the person's name, or that of the tests.
+    pub fn speaker(&self) -> String {
+        match &self.origin {
+            Origin::Person => clean_text(&self.person),
+            Origin::Test(name) => format!("tests {}", clean_text(name)),
+        }
     }
 
     /// The place in the one order in which all readers fold decisions.

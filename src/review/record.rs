@@ -1,6 +1,6 @@
 //! What was decided about one granule: everybody's decisions, and the ledger that ours go to.
 
-use std::collections::HashSet;
+use std::collections::{BTreeMap, HashSet};
 use std::time::Duration;
 
 use jiff::Timestamp;
@@ -107,21 +107,24 @@ impl Record {
         self.counts = self.state.counts(&self.vocabulary);
     }
 
-    /// Takes over what the ledgers hold by now: others may have decided meanwhile. Returns how many
-    /// decisions were not known here.
-    pub fn take_over(&mut self, reading: LedgerReading) -> usize {
+    /// Takes over what the ledgers hold by now: others may have decided meanwhile. Returns
+    /// who, with the number of decisions that were not known here.
+    pub fn take_over(&mut self, reading: LedgerReading) -> BTreeMap<String, usize> {
         let known: HashSet<&DecisionId> = self.decisions.iter().map(|one| &one.id).collect();
         let new: Vec<Decision> =
             reading.decisions.into_iter().filter(|one| !known.contains(&one.id)).collect();
         self.problems = reading.problems.iter().map(ToString::to_string).collect();
-        let count = new.len();
-        if count > 0 {
+        let mut whose: BTreeMap<String, usize> = BTreeMap::new();
+        for decision in &new {
+            *whose.entry(decision.speaker()).or_default() += 1;
+        }
+        if !new.is_empty() {
             self.writer.saw(&new);
             self.decisions.extend(new);
             self.decisions.sort_by(|one, next| one.order().cmp(&next.order()));
             self.fold();
         }
-        count
+        whose
     }
 
     /// Hears what the writer reports. Returns whether anything changed.

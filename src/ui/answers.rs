@@ -175,12 +175,16 @@ fn reread(app: &mut App, request: u64, found: LedgerReading) -> Vec<Job> {
         return Vec::new();
     };
     bench.awaited.reread = 0;
-    let new = bench.record.open_mut().map_or(0, |record| record.take_over(found));
-    if new > 0 {
+    let Some(record) = bench.record.open_mut() else { return Vec::new() };
+    let new = record.take_over(found);
+    if !new.is_empty() {
         bench.compare_tests();
         app.changed = true;
         deciding::update_tray(app);
-        app.say(format!("{new} decisions of others came in"));
+        let all: usize = new.values().sum();
+        let decisions = if all == 1 { "decision" } else { "decisions" };
+        let whose: Vec<String> = new.into_keys().collect();
+        app.say(format!("{all} {decisions} by {} came in", whose.join(", ")));
     }
     Vec::new()
 }

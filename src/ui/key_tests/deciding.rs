@@ -75,7 +75,7 @@ fn two_people_see_each_other() {
     ada.keys("a");
     ada.event(Event::Quiet);
     ada.settle();
-    assert_eq!(ada.message(), "2 decisions of others came in");
+    assert_eq!(ada.message(), "2 decisions by bo came in");
     assert_eq!((ada.flagged("cloudy"), ada.flagged("dust_or_ash")), (vec![0], vec![1]));
     ada.keys("u");
     assert_eq!(ada.message(), "undone: looked at 1", "one's own decisions are undone");

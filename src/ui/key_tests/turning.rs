@@ -30,6 +30,19 @@ fn it_opens_at_the_first_granule_that_is_not_signed_off_and_steps_over_broken_fi
 }
 
 #[test]
+fn a_granule_renamed_since_is_known_by_its_content() {
+    let place = Place::with(&["a.nc", "b.nc"]);
+    append_byte(&place.path("b.nc"));
+    let mut trial = place.review(&["a.nc", "b.nc"]);
+    trial.keys("S y");
+    trial.leave();
+    std::fs::rename(place.path("a.nc"), place.path("moved.nc")).unwrap();
+    let again = place.review(&["moved.nc", "b.nc"]);
+    assert_eq!(again.granule(), "b.nc", "what is signed off is passed over");
+    assert!(again.app.tray.entry(0).unwrap().is_signed_off());
+}
+
+#[test]
 fn going_back_to_a_file_that_has_gone_comes_back_to_the_one_that_is_there() {
     let names = ["a.nc", "b.nc"];
     let place = Place::with(&names);

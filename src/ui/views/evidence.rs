@@ -124,10 +124,7 @@ fn decisions(record: &Record, footprint: usize) -> Vec<EvidenceRow> {
 
 fn decision_words(decision: &Decision) -> String {
     let time = decision.at.strftime("%Y-%m-%d %H:%M");
-    let who = match &decision.origin {
-        crate::flags::Origin::Person => clean_text(&decision.person),
-        crate::flags::Origin::Test(name) => format!("test {}", clean_text(name)),
-    };
+    let who = decision.speaker();
     let what = match &decision.act {
         Act::Comment { .. } => clean_text(decision.why.as_deref().unwrap_or_default()),
         _ => deciding::words(decision),
