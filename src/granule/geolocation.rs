@@ -297,7 +297,8 @@ fn conversion(
             let says_tai = texts.any(|text| speaks_of_tai(&text));
             let calendar = variable.text("calendar");
             let unit = TimeUnit::parse(units, calendar.as_deref(), says_tai)?;
-            if unit.scale() == TimeScale::ElapsedSinceUtc && says_tai {
+            let said = calendar.is_some_and(|calendar| calendar.eq_ignore_ascii_case("utc"));
+            if unit.scale() == TimeScale::ElapsedSinceUtc && !said {
                 problems.push(Problem::guess(
                     "the time counts TAI; its epoch is taken as UTC, and leap seconds since then are taken off",
                     &variable.path,

@@ -4,6 +4,7 @@
 //!
 //! **Never** judges the data.
 
+mod angles;
 mod apodisation;
 mod apodise;
 mod band;

@@ -2,6 +2,7 @@
 
 use std::sync::{Arc, OnceLock};
 
+use super::angles;
 use super::apodise;
 use super::choose_bands::{choose, contradicted};
 use super::cube::{BandStorage, Cube};
@@ -90,6 +91,7 @@ pub fn open(
     let over = Over { reader: &reader, dimensions: &dimensions, grid: &grid };
     let mut geolocation = geolocation::read(over, layout, &mut problems)?;
     let lenders = lending::lenders(how, reader.path(), &grid, &mut geolocation, &mut problems)?;
+    angles::complete(&mut geolocation, &grid, &mut problems);
     geolocation.note_missing(&mut problems);
     let calculated = lending::calculated(over, &bands, &sources, &lenders, &mut problems)?;
     let quality = said_quality(index, &dimensions, layout)

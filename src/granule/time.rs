@@ -57,6 +57,9 @@ const LEAP_SECONDS: [(i16, i8, f64); 28] = [
     (2017, 1, 37.0),
 ];
 
+/// 1972-01-01 in seconds since 1970.
+const FIRST_LEAP: f64 = 63_072_000.0;
+
 impl TimeUnit {
     /// Reads a unit such as `seconds since 2000-01-01 00:00:00`, with its calendar. `says_tai` tells
     /// whether the file speaks of TAI anywhere else.
@@ -84,7 +87,11 @@ impl TimeUnit {
         let scale = match calendar.map(str::to_lowercase).as_deref() {
             Some("tai") => TimeScale::Tai,
             Some("utc") => TimeScale::ElapsedSinceUtc,
-            _ if says_tai || lower.contains("tai") => TimeScale::ElapsedSinceUtc,
+            // Before there were leap seconds an epoch of TAI can only be one in TAI.
+            _ if says_tai_at(&lower, says_tai) && epoch_seconds(epoch) < Some(FIRST_LEAP) => {
+                TimeScale::Tai
+            }
+            _ if says_tai_at(&lower, says_tai) => TimeScale::ElapsedSinceUtc,
             None | Some("standard" | "gregorian" | "proleptic_gregorian" | "") => TimeScale::Civil,
             Some(other) => return Err(format!("calendar {other:?} does not count real days")),
         };
@@ -106,6 +113,10 @@ impl TimeUnit {
     pub fn scale(&self) -> TimeScale {
         self.scale
     }
+}
+
+fn says_tai_at(unit: &str, elsewhere: bool) -> bool {
+    elsewhere || unit.contains("tai")
 }
 
 fn tai_minus_utc(unix: f64) -> f64 {
@@ -215,6 +226,24 @@ mod tests {
         assert_eq!(unit.to_unix(elapsed), start);
         // The same count from a TAI epoch begins 27 s earlier.
         assert_eq!(unix("seconds since 1993-01-01", Some("tai"), elapsed + 27.0), start);
+    }
+
+    #[test]
+    fn counts_of_tai_agree_with_a_general_purpose_library() {
+        // Source: astropy 8.0.2, differences of Time in scale utc and tai, for 2006-01-01 and
+        // 2020-06-01: seconds since 1970, since 1993-01-01 UTC, since 1958-01-01 TAI.
+        for (seconds, since_1993, since_1958) in [
+            (1_136_073_600.0, 410_227_206.0, 1_514_764_833.0),
+            (1_590_969_600.0, 865_123_210.0, 1_969_660_837.0),
+        ] {
+            let tai = |units: &str, value: f64| {
+                TimeUnit::parse(units, None, true).unwrap().to_unix(value)
+            };
+            assert_eq!(tai("seconds since 1993-01-01", since_1993), seconds);
+            assert_eq!(tai("seconds since 1958-01-01", since_1958), seconds);
+            let in_unit = unix("seconds since 1958-01-01 00:00:00 TAI", None, since_1958);
+            assert_eq!(in_unit, seconds);
+        }
     }
 
     #[test]

@@ -127,6 +127,8 @@ pub struct Field {
     pub variable: String,
     /// The file that lends it; none where it is the granule itself.
     pub file: Option<String>,
+    /// Whether it is worked out from what `variable` then names.
+    pub computed: bool,
     pub units_in_file: String,
     pub lowest: Option<f64>,
     pub highest: Option<f64>,
@@ -304,6 +306,7 @@ fn fields(granule: &Granule) -> Vec<Field> {
                 Origin::Lent(lender) => granule.lenders().get(lender).map(Lender::name),
                 Origin::Granule | Origin::Computed => None,
             },
+            computed: source.origin == Origin::Computed,
             units_in_file: source.units.clone(),
             lowest: finite().reduce(f64::min),
             highest: finite().reduce(f64::max),

@@ -159,7 +159,10 @@ fn storage(band: &BandDescription) -> String {
 }
 
 fn print_field(field: &Field, out: &mut impl Write) -> io::Result<()> {
-    write!(out, "  {}: `{}`", field.name, field.variable)?;
+    match field.computed {
+        true => write!(out, "  {}: computed from {}", field.name, field.variable)?,
+        false => write!(out, "  {}: `{}`", field.name, field.variable)?,
+    }
     if let Some(file) = &field.file {
         write!(out, " of {file}")?;
     }

@@ -1,10 +1,14 @@
 //! Places on the globe: points of the unit sphere, and which of them lie near.
 
+mod bearing;
 mod kd_tree;
 mod positions;
+mod sun;
 
+pub use bearing::bearing;
 pub use kd_tree::KdTree;
 pub use positions::{Vector, cross, dot, mean, minus, point, times};
+pub use sun::sun_angles;
 
 /// The Earth's mean radius, m. Source: Moritz 2000, Geodetic Reference System 1980, J. Geodesy 74,
 /// 128 (R1). An ellipsoid's distances differ by up to 0.6 %.
