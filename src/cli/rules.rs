@@ -8,6 +8,7 @@ use serde_json::{Value, json};
 
 use super::Exit;
 use super::exit::UsageError;
+use crate::layers::{INDICES, Index};
 use crate::screening::{BUILTIN_TEXT, Rulebook, Surface, Test, Threshold, Way, builtin};
 use crate::system::clean_text;
 
@@ -34,6 +35,12 @@ enum Verb {
         /// The text of the rulebook as it is, to begin one of your own from.
         #[arg(long)]
         toml: bool,
+    },
+    /// List the named indices, which every expression can use.
+    Indices {
+        /// JSON in place of text.
+        #[arg(long)]
+        json: bool,
     },
     /// Find all mistakes of a rulebook at once.
     Check {
@@ -65,6 +72,15 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
             } else {
                 write_text(&rulebook, &mut out)?;
             }
+            Ok(Exit::Done)
+        }
+        Verb::Indices { json: true } => {
+            let all: Vec<Value> = INDICES.iter().map(index_json).collect();
+            writeln!(out, "{}", json!({ "schema": 1, "indices": all }))?;
+            Ok(Exit::Done)
+        }
+        Verb::Indices { json: false } => {
+            INDICES.iter().try_for_each(|index| write_index(index, &mut out))?;
             Ok(Exit::Done)
         }
         Verb::Check { file, json } => check(&file, json, &mut out),
@@ -137,6 +153,27 @@ fn write_text(rulebook: &Rulebook, out: &mut dyn Write) -> std::io::Result<()> {
     }
     writeln!(out, "\nTests:")?;
     rulebook.tests.iter().try_for_each(|test| write_test(rulebook, test, out))
+}
+
+fn write_index(index: &Index, out: &mut dyn Write) -> std::io::Result<()> {
+    writeln!(out, "{} = {}", index.name, index.expression)?;
+    let usual =
+        index.usual.map_or_else(String::new, |_| format!("usually {}", index.usual_words()));
+    paragraph("    ", &usual, out)?;
+    writeln!(out, "    shows: {}\n    misleads: {}", index.shows, index.fails)?;
+    writeln!(out, "    source: {}", index.source)
+}
+
+fn index_json(index: &Index) -> Value {
+    json!({
+        "name": index.name,
+        "expression": index.expression,
+        "unit": index.unit,
+        "usual": index.usual,
+        "shows": index.shows,
+        "fails": index.fails,
+        "source": index.source,
+    })
 }
 
 fn paragraph(indent: &str, text: &str, out: &mut dyn Write) -> std::io::Result<()> {

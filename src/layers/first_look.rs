@@ -1,5 +1,6 @@
 //! Expressions for a first look at a granule, and what a command line may offer.
 
+use super::indices::INDICES;
 use super::syntax::{DERIVED_NAMES, FRIENDLY_NAMES, functions};
 
 /// Expression and short label of what is shown for a footprint at first: window temperatures and
@@ -16,11 +17,13 @@ pub const FIRST_LOOK: &[(&str, &str)] = &[
     ("sd3(bt(900))", "spread 3x3"),
 ];
 
-/// What to offer where a layer is typed: the first look, the geolocation, the functions.
+/// What to offer where a layer is typed: the first look, the catalogue, the geolocation, the
+/// functions.
 pub fn suggestions() -> impl Iterator<Item = &'static str> {
     FIRST_LOOK
         .iter()
         .map(|(expression, _)| *expression)
+        .chain(INDICES.iter().map(|index| index.name))
         .chain(FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name))
         .chain(functions().map(|(_, example)| example))
 }

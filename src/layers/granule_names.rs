@@ -4,6 +4,7 @@ use std::collections::BTreeMap;
 use std::ops::Range;
 
 use super::derived::derive;
+use super::indices::INDICES;
 use super::kept::Kept;
 use super::names::{NameError, Names, Values};
 use super::neighbours::Neighbours;
@@ -83,7 +84,8 @@ impl<'g> GranuleNames<'g> {
         let dimensions = self.granule.footprints().names().iter().cloned();
         let variables =
             self.granule.all_variables().map(|variable| format!("var(\"{}\")", variable.name));
-        friendly.chain(defined).chain(dimensions).chain(variables).collect()
+        let indices = INDICES.iter().map(|index| index.name.to_owned());
+        friendly.chain(defined).chain(indices).chain(dimensions).chain(variables).collect()
     }
 
     fn find_neighbours(&self) -> Neighbours {

@@ -4,10 +4,12 @@
 //!
 //! **Never** decides anything.
 
+mod catalogue;
 mod derived;
 mod evaluation;
 mod first_look;
 mod granule_names;
+mod indices;
 mod kept;
 mod names;
 mod neighbours;
@@ -15,9 +17,11 @@ mod syntax;
 mod unit;
 mod whole_granule;
 
+pub use catalogue::{Index, index, index_expression, indices_as_markdown};
 pub use evaluation::{Layer, LayerError, channels_needed, evaluate, evaluate_all};
 pub use first_look::{FIRST_LOOK, suggestions};
 pub use granule_names::GranuleNames;
+pub use indices::INDICES;
 pub use kept::Kept;
 pub use names::{NameError, Names, Values};
 pub use neighbours::Neighbours;

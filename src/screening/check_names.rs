@@ -6,7 +6,7 @@ use std::ops::Range;
 use super::read_rulebook::{Plain, meant};
 use super::table_reader::Notebook;
 use super::threshold::Threshold;
-use crate::layers::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, functions};
+use crate::layers::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, INDICES, functions};
 use crate::system::clean_text;
 
 /// Notes what is wrong with the names.
@@ -71,7 +71,9 @@ fn known_words(
         if by_name.contains_key(name) || fields().any(|field| field == name) {
             continue;
         }
-        let known: Vec<&str> = by_name.keys().map(String::as_str).chain(fields()).collect();
+        let indices = INDICES.iter().map(|index| index.name);
+        let known: Vec<&str> =
+            by_name.keys().map(String::as_str).chain(fields()).chain(indices).collect();
         let what = format!("there is no {name}{}", meant(name, &known));
         notebook.note(span, key, format!("{what}\n    {}", clean_text(expression.text())));
     }

@@ -9,12 +9,14 @@
 //! **Never** records anything.
 
 mod builtin;
+mod catalogue_used;
 mod check_names;
 mod combine;
 mod evidence;
 mod lent_names;
 mod mistakes;
 mod read_rulebook;
+mod read_threshold;
 mod rulebook;
 mod run_tests;
 mod screened;

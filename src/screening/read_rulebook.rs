@@ -3,14 +3,15 @@
 use std::collections::BTreeMap;
 use std::ops::Range;
 
-use toml::Spanned;
-use toml::de::{DeTable, DeValue};
+use toml::de::DeTable;
 
+use super::catalogue_used::catalogue_used;
 use super::check_names::check_names;
 use super::mistakes::RulebookError;
+use super::read_threshold::threshold;
 use super::rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
 use super::table_reader::{Notebook, TableReader};
-use super::threshold::{Sense, Table, Threshold};
+use super::threshold::Sense;
 use crate::system::{clean_text, near_names};
 
 /// What the first key of a rulebook must say.
@@ -67,13 +68,16 @@ fn read(text: &str, notebook: &mut Notebook) -> Option<Rulebook> {
         top.wrong_here("there are no tests: write at least one, headed [[tests]]");
     }
     top.finish();
-    let definitions = each(notebook, "definitions", &definitions, definition);
+    let mut definitions = each(notebook, "definitions", &definitions, definition);
     let families = each(notebook, "families", &families, family);
     let mut surfaces = each(notebook, "surfaces", &surfaces, surface);
     if surfaces.is_empty() {
         surfaces.push((0..0, anywhere()));
     }
     let tests = each(notebook, "tests", &tests, |table| test(table, &surfaces));
+    let taken = catalogue_used(&definitions, &surfaces, &tests);
+    let fingerprint = fingerprint(text, &taken);
+    definitions.extend(taken.into_iter().map(|definition| (0..0, definition)));
     let by_name = definitions.iter().map(|(_, d)| (d.name.clone(), d.expression.clone())).collect();
     let plain = Plain {
         definitions: &definitions,
@@ -93,11 +97,22 @@ fn read(text: &str, notebook: &mut Notebook) -> Option<Rulebook> {
         families: without_spans(families),
         surfaces: without_spans(surfaces),
         tests: without_spans(tests),
-        fingerprint: blake3::hash(text.as_bytes()).to_hex()[..12].to_owned(),
+        fingerprint,
         by_name,
     };
     rulebook.assess = assessed(notebook, &rulebook, assess);
     Some(rulebook)
+}
+
+/// The text's hash, and that of what it takes from the catalogue: another meaning of a name makes
+/// another rulebook.
+fn fingerprint(text: &str, taken: &[Definition]) -> String {
+    let mut hash = blake3::Hasher::new();
+    hash.update(text.as_bytes());
+    for definition in taken {
+        hash.update(format!("\n{} = {}", definition.name, definition.expression).as_bytes());
+    }
+    hash.finalize().to_hex()[..12].to_owned()
 }
 
 /// What was read, with its places, before it is known to be right.
@@ -346,81 +361,4 @@ fn sense(table: &mut TableReader<'_, '_>) -> Option<Sense> {
         table.wrong_here(format!("sense is \"{}\", expected above or below", clean_text(&word)));
     }
     sense
-}
-
-fn threshold(table: &mut TableReader<'_, '_>) -> Option<Threshold> {
-    let Some(value) = table.value("threshold") else {
-        table.wrong_here("threshold is missing");
-        return None;
-    };
-    if value.get_ref().as_str().is_some() {
-        return table.expression_of("threshold", value).map(Threshold::Expression);
-    }
-    let Some(inner) = value.get_ref().as_table() else {
-        return table.number("threshold").map(Threshold::Number);
-    };
-    let path = format!("{}, threshold", table.path);
-    let mut reader = TableReader::new(table.notebook, &path, value.span(), inner);
-    let read = lookup(&mut reader);
-    reader.finish();
-    read.map(|table| Threshold::Table(Box::new(table)))
-}
-
-fn lookup(table: &mut TableReader<'_, '_>) -> Option<Table> {
-    let over: Vec<_> = match table.value("over") {
-        None => {
-            table.wrong_here("over is missing: the expression, or the two, that the table is over");
-            return None;
-        }
-        Some(value) => match value.get_ref().as_array() {
-            Some(list) => list.iter().map(|one| table.expression_of("over", one)).collect(),
-            None => vec![table.expression_of("over", value)],
-        },
-    };
-    let at = table.value("at");
-    let values = table.value("values");
-    let (Some(at), Some(values)) = (at, values) else {
-        table.wrong_here("a table needs over, at and values");
-        return None;
-    };
-    let (at, values) = match over.len() {
-        1 => (vec![table.numbers("at", at)?], table.numbers("values", values)?),
-        2 => {
-            let (at, values) = (rows(table, "at", at)?, rows(table, "values", values)?);
-            let across = at.get(1).map_or(0, Vec::len);
-            if let Some(row) = values.iter().find(|row| row.len() != across) {
-                table.wrong_here(format!("a row of {} values for {across} points", row.len()));
-                return None;
-            }
-            (at, values.concat())
-        }
-        _ => {
-            table.wrong_here("a table is over one expression or two");
-            return None;
-        }
-    };
-    let over: Vec<_> = over.into_iter().collect::<Option<_>>()?;
-    let ascending = |points: &Vec<f64>| points.windows(2).all(|pair| pair[0] < pair[1]);
-    let sizes: usize = at.iter().map(Vec::len).product();
-    if at.len() != over.len() || at.iter().any(Vec::is_empty) || !at.iter().all(ascending) {
-        table.wrong_here("at must hold ascending numbers, one list for each expression");
-        None
-    } else if sizes != values.len() {
-        table.wrong_here(format!("{} values do not fit {sizes} points", values.len()));
-        None
-    } else {
-        Some(Table { over, at, values })
-    }
-}
-
-fn rows(
-    table: &mut TableReader<'_, '_>,
-    key: &str,
-    value: &Spanned<DeValue<'_>>,
-) -> Option<Vec<Vec<f64>>> {
-    let Some(list) = value.get_ref().as_array() else {
-        table.wrong(key, value, "expected a list of lists, as in [[260, 270], [1, 2]]");
-        return None;
-    };
-    list.iter().map(|row| table.numbers(key, row)).collect()
 }

@@ -127,6 +127,18 @@ pub struct Way {
     pub note: String,
 }
 
+impl Test {
+    /// Every expression of the test: guards, values, what thresholds are worked out from.
+    pub fn expressions(&self) -> Vec<&Expression> {
+        let mut all: Vec<&Expression> = self.when.iter().chain(&self.halved_when).collect();
+        for way in &self.ways {
+            all.push(&way.expression);
+            all.extend(way.threshold.expressions());
+        }
+        all
+    }
+}
+
 impl Rulebook {
     /// The flags that its tests speak about, in the order of the tests.
     pub fn flags(&self) -> Vec<&str> {

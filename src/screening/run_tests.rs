@@ -43,17 +43,7 @@ pub fn expressions(rulebook: &Rulebook) -> Vec<&Expression> {
         }
     };
     rulebook.surfaces.iter().filter_map(|surface| surface.place.as_ref()).for_each(&mut add);
-    for test in &rulebook.tests {
-        test.when.iter().chain(&test.halved_when).for_each(&mut add);
-        for way in &test.ways {
-            add(&way.expression);
-            match &way.threshold {
-                Threshold::Number(_) => {}
-                Threshold::Expression(threshold) => add(threshold),
-                Threshold::Table(table) => table.over.iter().for_each(&mut add),
-            }
-        }
-    }
+    rulebook.tests.iter().flat_map(Test::expressions).for_each(&mut add);
     all
 }
 
@@ -121,14 +111,8 @@ fn layers_of<'l>(
     layers: &'l Layers<'_>,
 ) -> Result<(&'l Layer, Vec<&'l Layer>), &'l LayerError> {
     let value = found(layers, &way.expression)?;
-    let over = match &way.threshold {
-        Threshold::Number(_) => Vec::new(),
-        Threshold::Expression(threshold) => vec![found(layers, threshold)?],
-        Threshold::Table(table) => {
-            table.over.iter().map(|over| found(layers, over)).collect::<Result<_, _>>()?
-        }
-    };
-    Ok((value, over))
+    let over = way.threshold.expressions().iter().map(|over| found(layers, over));
+    Ok((value, over.collect::<Result<_, _>>()?))
 }
 
 impl Chosen<'_> {

@@ -50,6 +50,17 @@ pub enum Threshold {
     Expression(Expression),
 }
 
+impl Threshold {
+    /// What it is worked out from.
+    pub fn expressions(&self) -> &[Expression] {
+        match self {
+            Self::Number(_) => &[],
+            Self::Expression(expression) => std::slice::from_ref(expression),
+            Self::Table(table) => &table.over,
+        }
+    }
+}
+
 /// A table over one or two expressions: linear between its points, constant beyond its edges.
 #[derive(Debug, Clone)]
 pub struct Table {

@@ -1,6 +1,7 @@
 //! The order in which definitions are worked out.
 
 use super::error::LayerError;
+use crate::layers::catalogue::index_expression;
 use crate::layers::names::Names;
 use crate::layers::syntax::{Expression, Kind, Span};
 
@@ -21,7 +22,8 @@ pub fn in_order<'n>(
                 done.extend(visited.filter(|visit| !visit.name.is_empty()).map(Visit::done));
                 continue;
             };
-            let Some(definition) = names.definition(&name) else { continue };
+            let meant = names.definition(&name).or_else(|| index_expression(&name));
+            let Some(definition) = meant else { continue };
             if done.iter().any(|(known, _)| *known == name) {
                 continue;
             }
