@@ -7,7 +7,9 @@
 
 mod cases;
 mod exporting;
+mod many_spectra;
 mod record;
+mod reference_spectrum;
 mod rulebook_of;
 mod rulings;
 mod tests_decide;
@@ -19,7 +21,9 @@ mod verbs;
 
 pub use cases::{Case, cases};
 pub use exporting::ExportedBy;
+pub use many_spectra::ManySpectra;
 pub use record::Record;
+pub use reference_spectrum::ReferenceSpectrum;
 pub use review::Review;
 pub use rulebook_of::{NoRulebook, rulebook_of};
 pub use rulings::{Ruled, has_suggestion};

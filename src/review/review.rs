@@ -5,8 +5,10 @@ use std::sync::Arc;
 
 use crate::export::granule_identity;
 use crate::flags::GranuleIdentity;
-use crate::granule::{Cube, Granule, GranuleError, Opening};
-use crate::layers::{Expression, GranuleNames, Kept, Layer, Mistake, evaluate_all};
+use crate::granule::{Channel, Cube, Granule, GranuleError, Opening};
+use crate::layers::{
+    Expression, GranuleNames, Kept, Layer, Mistake, channels_needed, evaluate_all,
+};
 use crate::screening::{Rulebook, Screened, screen};
 use crate::system::Cancel;
 
@@ -54,6 +56,12 @@ impl Review {
     /// The file can't be read, or `cancel` was asked for.
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
         self.names().lend_all(cancel, |names| screen(rulebook, names))
+    }
+
+    /// The channels that a layer is made from; none where the expression makes no sense.
+    pub fn channels_of_layer(&self, text: &str) -> Vec<Channel> {
+        let expression = Expression::parse(text);
+        expression.map_or_else(|_| Vec::new(), |one| channels_needed(&[&one], &self.names()))
     }
 
     /// Runs the tests of a rulebook over what has been read so far.

@@ -22,6 +22,16 @@ pub struct BandSpectrum {
     pub temperatures: Vec<f64>,
 }
 
+impl BandSpectrum {
+    /// A band of these radiances (mW m-2 sr-1 (cm-1)-1) at these wavenumbers (cm-1).
+    pub fn of_radiances(wavenumbers: &[f64], radiances: Vec<f64>) -> Self {
+        let pairs = wavenumbers.iter().zip(&radiances);
+        let temperatures =
+            pairs.map(|(at, value)| brightness_temperature_or_nan(*at, *value)).collect();
+        Self { radiances, temperatures }
+    }
+}
+
 impl Review {
     /// The spectrum of a footprint, if all bands of it have been read.
     pub fn spectrum_in_memory(&self, footprint: usize) -> Option<Spectrum> {
@@ -41,17 +51,14 @@ impl Review {
     pub fn read_spectrum(&self, footprint: usize) -> Result<Spectrum, GranuleError> {
         let bands = self.granule().bands().iter().enumerate().map(|(number, band)| {
             let values = self.granule().read_spectrum(number, footprint)?;
-            let converted = |convert: fn(f64, f64) -> f64| {
-                let wavenumbers = band.axis.wavenumbers().iter();
-                wavenumbers.zip(&values).map(|(at, value)| convert(*at, *value)).collect()
-            };
             Ok(match band.quantity {
-                Quantity::Radiance(_) => BandSpectrum {
-                    temperatures: converted(brightness_temperature_or_nan),
-                    radiances: values,
-                },
+                Quantity::Radiance(_) => {
+                    BandSpectrum::of_radiances(band.axis.wavenumbers(), values)
+                }
                 Quantity::BrightnessTemperature(_) => {
-                    BandSpectrum { radiances: converted(planck), temperatures: values }
+                    let pairs = band.axis.wavenumbers().iter().zip(&values);
+                    let radiances = pairs.map(|(at, value)| planck(*at, *value)).collect();
+                    BandSpectrum { radiances, temperatures: values }
                 }
             })
         });

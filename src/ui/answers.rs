@@ -19,6 +19,7 @@ use super::panes::Arrangement;
 use super::place::Place;
 use super::screening;
 use super::shown_layer::ShownLayer;
+use super::tracing;
 use super::turning;
 
 /// Takes an answer.
@@ -36,6 +37,14 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Screened { request, found } => screening::take(app, request, found),
         Answer::Spectrum { request, found } => spectrum(app, request, found),
         Answer::Pinned { request, found } => pinned(app, request, found),
+        Answer::Trace { request, found } => tracing::take(app, request, found),
+        Answer::Noise { request, footprint, found } => {
+            if let Some(bench) = awaited(app, |bench| bench.awaited.noise == request) {
+                bench.awaited.noise = 0;
+                bench.look.noise = Some((footprint, found));
+            }
+            Vec::new()
+        }
         Answer::Exported { request, found } => exported(app, request, found),
     }
 }
@@ -225,6 +234,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
             }
             let difference = layer.unit == LayerUnit::KelvinDifference;
             bench.layer.fill(layer.values, layer.unit.label(), difference, layer.notes);
+            tracing::mark_used(bench);
         }
         Err(why) if bench.layer.text == bench.wanted => bench.layer.problem = Some(why),
         Err(why) => {

@@ -18,6 +18,7 @@ use super::place::Place;
 use super::shown_layer::ShownLayer;
 use super::side::Side;
 use super::spectrum_window::SpectrumWindow;
+use super::trace_look::{TraceLook, TraceQuantity};
 
 /// The footprints that can be pinned at once; more spectra cannot be told apart.
 pub const MOST_PINS: usize = 4;
@@ -69,8 +70,8 @@ pub struct Bench {
     pub window: SpectrumWindow,
     /// The channel in hand, by its number in `channels`.
     pub channel: usize,
-    /// Radiances are on show instead of brightness temperatures.
-    pub radiance: bool,
+    /// What the Trace shows beside the spectrum, and in which quantity.
+    pub look: TraceLook,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
     /// What the signs over the Field tell.
@@ -133,7 +134,7 @@ impl Bench {
             windows,
             quality: Vec::new(),
             window: SpectrumWindow::whole(low, high),
-            radiance: false,
+            look: TraceLook::default(),
             field_zoom: 0,
             signs: Signs::default(),
             marks: true,
@@ -208,6 +209,11 @@ impl Bench {
         format!("({})", parts.join(", "))
     }
 
+    /// Whether a box or a side is selected.
+    pub fn has_selection(&self) -> bool {
+        self.anchor.is_some() || self.side.is_some()
+    }
+
     /// Lets go of box and side; false if there was neither.
     pub fn drop_selection(&mut self) -> bool {
         self.anchor.take().is_some() | self.side.take().is_some()
@@ -233,7 +239,7 @@ impl Bench {
             layer: Some(self.wanted.clone()),
             channel: self.channel_wavenumber(),
             window: (!self.window.is_whole()).then(|| self.window.shown()),
-            radiance: self.radiance,
+            quantity: self.look.quantity.name().to_owned(),
             field_zoom: self.field_zoom,
             strip_along: self.strip_along,
             panes: panes.names(),
@@ -251,7 +257,7 @@ impl Bench {
         if let Some((low, high)) = place.window.filter(|(low, high)| low < high) {
             self.window.show(low, high);
         }
-        self.radiance = place.radiance;
+        self.look.quantity = TraceQuantity::named(&place.quantity).unwrap_or_default();
         self.field_zoom = place.field_zoom.min(super::looking::MOST_FIELD_ZOOM);
         let dimensions = self.review.granule().footprints().lengths().len();
         self.strip_along = place.strip_along.min(dimensions.saturating_sub(1));

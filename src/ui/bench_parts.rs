@@ -170,6 +170,10 @@ pub struct Awaited {
     pub indices: u64,
     /// Reading what the producer says about quality.
     pub quality: u64,
+    /// Finding what the Trace shows beside the spectrum.
+    pub trace: u64,
+    /// Reading the noise under the cursor.
+    pub noise: u64,
     /// Running the tests.
     pub screen: u64,
     /// Writing an export.

@@ -19,6 +19,10 @@ pub enum Command {
     Withdraw(String, Option<String>),
     /// Select all footprints on one side of a value of the layer.
     Side(Side),
+    /// Planck curves of these temperatures, K; none takes them off.
+    Planck(Vec<f64>),
+    /// A spectrum in a file to show differences to.
+    Reference(String),
     /// The colour range, in the layer's unit; none for percentiles again.
     Range(Option<(f64, f64)>),
     /// Set the granule aside, with the reason.
@@ -68,6 +72,18 @@ const WORDED: &[Worded] = &[
         words: "[LOW HIGH]",
         help: "colour range; without words by percentiles",
         parse: range,
+    },
+    Worded {
+        name: "planck",
+        words: "[KELVIN …]",
+        help: "Planck curves in radiances, as in planck 250 280",
+        parse: planck,
+    },
+    Worded {
+        name: "reference",
+        words: "FILE",
+        help: "differences to a spectrum in a CSV file",
+        parse: |words| sentence(words, "the file").map(Command::Reference),
     },
     Worded {
         name: "aside",
@@ -164,6 +180,14 @@ fn range(words: &str) -> Result<Command, String> {
     }
 }
 
+fn planck(words: &str) -> Result<Command, String> {
+    let kelvins: Vec<f64> = words.split_whitespace().map(number).collect::<Result<_, _>>()?;
+    match kelvins.iter().all(|kelvin| (1.0..=10_000.0).contains(kelvin)) {
+        true => Ok(Command::Planck(kelvins)),
+        false => Err("temperatures are in K, from 1 to 10000".to_owned()),
+    }
+}
+
 fn export(words: &str) -> Result<Command, String> {
     Ok(Command::Export((!words.is_empty()).then(|| words.to_owned())))
 }
@@ -236,6 +260,9 @@ mod tests {
             ("range 200 300", Command::Range(Some((200.0, 300.0)))),
             ("range", Command::Range(None)),
             ("side <=230", Command::Side(Side { relation: Relation::UpTo, value: 230.0 })),
+            ("planck 250 280.5", Command::Planck(vec![250.0, 280.5])),
+            ("planck", Command::Planck(Vec::new())),
+            ("reference clear.csv", Command::Reference("clear.csv".to_owned())),
             ("aside half of it is missing", Command::Aside("half of it is missing".to_owned())),
             ("export masks", Command::Export(Some("masks".to_owned()))),
         ] {
@@ -253,6 +280,8 @@ mod tests {
             ("go soon", "does not begin with a number"),
             ("side 230", "< or >"),
             ("range 300 200", "comes first"),
+            ("planck -3", "from 1"),
+            ("reference", "the file is missing"),
             ("", "no command"),
         ] {
             let message = parse(line).unwrap_err();

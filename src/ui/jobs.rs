@@ -3,15 +3,16 @@
 use std::path::PathBuf;
 use std::sync::Arc;
 
-use crate::flags::{GranuleIdentity, LedgerReading};
+use crate::flags::{FootprintSet, GranuleIdentity, LedgerReading};
 use crate::layers::Layer;
-use crate::review::{Record, Review, Spectrum};
+use crate::review::{ManySpectra, Record, Review, Spectrum};
 use crate::screening::Screened;
 use crate::system::Cancel;
 use crate::tray::Standing;
 
 use super::bench::Quality;
 use super::place::Place;
+use super::trace_look::{NoiseOf, ReferenceFile};
 
 /// Something to be done. Each carries the number of its request, which the answer repeats: an
 /// answer whose number is no longer waited for is dropped.
@@ -109,6 +110,24 @@ pub enum Job {
         /// The footprints.
         footprints: Vec<usize>,
     },
+    /// Find what the Trace shows beside the spectrum.
+    Trace {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// What is asked for.
+        ask: TraceAsk,
+    },
+    /// Read the noise of a footprint's channels.
+    Noise {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The footprint.
+        footprint: usize,
+    },
     /// Keep a place.
     Keep {
         /// The granule by its content.
@@ -127,6 +146,26 @@ pub enum Job {
         /// Files that must never be written to.
         inputs: Vec<PathBuf>,
     },
+}
+
+/// What the Trace may ask for.
+pub enum TraceAsk {
+    /// The mean of all spectra.
+    Mean,
+    /// How the spectra of these footprints lie; the selection in words.
+    Envelope(FootprintSet, String),
+    /// The spectrum in this file.
+    File(PathBuf),
+}
+
+/// What was found for the Trace.
+pub enum TraceFound {
+    /// The mean of all spectra.
+    Mean(ManySpectra),
+    /// How the spectra of a selection lie; the selection in words.
+    Envelope(ManySpectra, String),
+    /// A spectrum out of a file.
+    File(ReferenceFile),
 }
 
 /// What a job found.
@@ -214,6 +253,22 @@ pub enum Answer {
         request: u64,
         /// The spectra.
         found: Vec<Spectrum>,
+    },
+    /// What the Trace shows beside the spectrum was found.
+    Trace {
+        /// The request.
+        request: u64,
+        /// What was found.
+        found: Result<TraceFound, String>,
+    },
+    /// The noise of a footprint's channels was read.
+    Noise {
+        /// The request.
+        request: u64,
+        /// The footprint.
+        footprint: usize,
+        /// The noise, band by band.
+        found: NoiseOf,
     },
     /// The flag mask was written.
     Exported {

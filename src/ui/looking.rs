@@ -8,6 +8,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::panes::Pane;
 use super::shown_layer::RangeChoice;
+use super::tracing;
 
 /// How many times the Field can be zoomed in; each time shows half the width and height.
 pub const MOST_FIELD_ZOOM: u8 = 5;
@@ -145,7 +146,7 @@ pub fn strip_along(app: &mut App) -> Vec<Job> {
     Vec::new()
 }
 
-/// Steps through channels, zooms and pans the spectrum, switches its quantity.
+/// Steps through channels, zooms and pans the spectrum.
 pub fn trace(app: &mut App, action: Action) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     let channel = bench.channel;
@@ -159,8 +160,7 @@ pub fn trace(app: &mut App, action: Action) -> Vec<Job> {
         Action::ZoomOut => bench.window.zoom_out(centre),
         Action::PanLeft => bench.window.pan(false),
         Action::PanRight => bench.window.pan(true),
-        Action::WholeSpectrum => bench.window.show_whole(),
-        _ => bench.radiance = !bench.radiance,
+        _ => bench.window.show_whole(),
     }
     Vec::new()
 }
@@ -221,12 +221,14 @@ pub fn spectrum(app: &mut App) -> Vec<Job> {
     bench.awaited.spectrum = 0;
     bench.spectrum_problem = None;
     bench.spectrum = bench.review.spectrum_in_memory(bench.cursor);
-    if bench.spectrum.is_some() {
-        return Vec::new();
+    let mut jobs = Vec::new();
+    if bench.spectrum.is_none() {
+        bench.awaited.spectrum = request;
+        let review = Arc::clone(&bench.review);
+        jobs.push(Job::Spectrum { request, review, footprint: bench.cursor });
     }
-    bench.awaited.spectrum = request;
-    let review = Arc::clone(&bench.review);
-    vec![Job::Spectrum { request, review, footprint: bench.cursor }]
+    jobs.extend(tracing::noise(app));
+    jobs
 }
 
 /// Says that there is nothing to do it with.

@@ -47,6 +47,8 @@ mod side;
 mod signals;
 mod spectrum_window;
 mod terminal;
+mod trace_look;
+mod tracing;
 #[cfg(test)]
 mod trial;
 mod turning;

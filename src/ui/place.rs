@@ -16,8 +16,8 @@ pub struct Place {
     pub channel: Option<f64>,
     /// The part of the spectrum on show, cm-1; none for all of it.
     pub window: Option<(f64, f64)>,
-    /// Radiances are on show instead of brightness temperatures.
-    pub radiance: bool,
+    /// The quantity of the spectra, by its name.
+    pub quantity: String,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
     /// The dimension that the Strip lies along, by its number.

@@ -29,6 +29,10 @@ enum Lane {
     Spectrum,
     /// Tests, likewise.
     Screen,
+    /// What the Trace shows beside the spectrum, likewise.
+    Trace,
+    /// Noise, likewise.
+    Noise,
     /// Everything in its turn.
     InTurn,
     /// A thread of its own at once: may hang on a file until the reader's limit.
@@ -40,6 +44,8 @@ fn lane_of(job: &Job) -> Lane {
         Job::Layer { .. } => Lane::Layer,
         Job::Indices { .. } => Lane::Indices,
         Job::Spectrum { .. } => Lane::Spectrum,
+        Job::Trace { .. } => Lane::Trace,
+        Job::Noise { .. } => Lane::Noise,
         Job::Screen { .. } => Lane::Screen,
         Job::Standing { .. } => Lane::InTurn,
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {

@@ -12,6 +12,7 @@ use super::line::{Edit, Line};
 use super::looking;
 use super::overlay::{FlagOrder, LinePrompt, Overlay, Purpose};
 use super::side::Side;
+use super::tracing;
 use super::update::act;
 
 /// Asks for one side of a value, beginning with the value under the cursor.
@@ -210,6 +211,8 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
         Command::Flag(flag, why) => give(app, true, flag, why),
         Command::Withdraw(flag, why) => give(app, false, flag, why),
         Command::Side(side) => select_side(app, side),
+        Command::Planck(kelvins) => tracing::planck(app, kelvins),
+        Command::Reference(path) => tracing::reference_file(app, &path),
         Command::Range(range) => looking::set_range(app, range),
         Command::Aside(why) => deciding::change(app, |record, now| {
             record.set_aside(&why, now).map(|()| "set aside".to_owned())

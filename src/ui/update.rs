@@ -7,7 +7,7 @@ use super::key::{Code, Key};
 use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
-use super::{answers, deciding, looking, moving, prompts, screening, turning, typing};
+use super::{answers, deciding, looking, moving, prompts, screening, tracing, turning, typing};
 
 /// Changes the state by an event and names the jobs to be started.
 pub fn update(app: &mut App, event: Event) -> Vec<Job> {
@@ -69,8 +69,11 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::OtherLayer => looking::other_layer(app),
         A::Signs | A::Marks => looking::signs(app, action),
         A::FieldIn | A::FieldOut => looking::field(app, action),
-        A::ChannelUp | A::ChannelDown | A::ChannelFarUp | A::ChannelFarDown | A::SwitchQuantity => {
+        A::ChannelUp | A::ChannelDown | A::ChannelFarUp | A::ChannelFarDown => {
             looking::trace(app, action)
+        }
+        A::SwitchQuantity | A::Reference | A::Envelope | A::Planck | A::NoiseBars => {
+            tracing::act(app, action)
         }
         A::ZoomIn | A::ZoomOut | A::PanLeft | A::PanRight | A::WholeSpectrum => {
             looking::trace(app, action)

@@ -6,15 +6,16 @@ use std::time::{Duration, Instant};
 
 use crate::flags::{FlagState, read_ledgers};
 use crate::granule::{GranuleError, VariableRole};
-use crate::review::{ExportedBy, Record, Review, rulebook_of};
+use crate::review::{ExportedBy, Record, ReferenceSpectrum, Review, rulebook_of};
 use crate::screening::Screened;
-use crate::system::Cancel;
+use crate::system::{Cancel, clean_text};
 use crate::tray::Standing;
 
 use super::app::Outside;
 use super::bench::Quality;
-use super::jobs::{Answer, Job};
+use super::jobs::{Answer, Job, TraceAsk, TraceFound};
 use super::place;
+use super::trace_look::ReferenceFile;
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
 const PROGRESS_PAUSE: Duration = Duration::from_millis(80);
@@ -66,6 +67,16 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = footprints.iter().filter_map(read).collect();
             send(Answer::Pinned { request: *request, found });
         }
+        Job::Trace { request, review, ask } => {
+            send(Answer::Trace { request: *request, found: trace(review, ask) });
+        }
+        Job::Noise { request, review, footprint } => {
+            let bands = 0..review.granule().bands().len();
+            // Noise that can't be read is none: the spectrum stands without it.
+            let noise = |band| review.granule().noise(band, *footprint).ok().flatten();
+            let found = bands.map(noise).collect();
+            send(Answer::Noise { request: *request, footprint: *footprint, found });
+        }
         Job::Keep { identity, place } => {
             place::keep(&outside.campaign, identity, &outside.author.person, place);
         }
@@ -92,9 +103,37 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Screen { request, .. } => Answer::Screened { request: *request, found: Err(why()) },
         Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
         Job::Pinned { request, .. } => Answer::Pinned { request: *request, found: Vec::new() },
-        Job::Reread { .. } | Job::Keep { .. } => return None,
+        Job::Trace { request, .. } => Answer::Trace { request: *request, found: Err(why()) },
+        Job::Reread { .. } | Job::Keep { .. } | Job::Noise { .. } => return None,
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
+}
+
+/// A spectrum in a file is a few thousand lines; a longer file is a mistake.
+const LONGEST_REFERENCE: u64 = 16 << 20;
+
+fn trace(review: &Review, ask: &TraceAsk) -> Result<TraceFound, String> {
+    match ask {
+        TraceAsk::Mean => {
+            let all = (0..review.granule().footprints().count()).collect();
+            review.many_spectra(&all).map(TraceFound::Mean).map_err(in_words)
+        }
+        TraceAsk::Envelope(footprints, words) => {
+            let found = review.many_spectra(footprints).map_err(in_words)?;
+            Ok(TraceFound::Envelope(found, words.clone()))
+        }
+        TraceAsk::File(path) => {
+            let name = clean_text(&path.file_name().unwrap_or_default().to_string_lossy());
+            let why = |why: String| format!("{name} is no reference: {why}");
+            let size = std::fs::metadata(path).map_err(|error| why(error.to_string()))?.len();
+            if size > LONGEST_REFERENCE {
+                return Err(why("it is too long for one spectrum".to_owned()));
+            }
+            let text = std::fs::read_to_string(path).map_err(|error| why(error.to_string()))?;
+            let reference = ReferenceSpectrum::from_csv(&text).map_err(why)?;
+            Ok(TraceFound::File(ReferenceFile { name, bands: review.on_channels(&reference) }))
+        }
+    }
 }
 
 fn in_words(error: GranuleError) -> String {

@@ -48,7 +48,10 @@ fn the_channel_in_hand_moves_across_bands_and_the_window_follows() {
     trial.keys("> >");
     assert_eq!(trial.bench().channel_wavenumber(), Some(1231.0));
     trial.keys("0 b");
-    assert!(trial.bench().window.is_whole() && trial.bench().radiance);
+    assert!(
+        trial.bench().window.is_whole()
+            && trial.bench().look.quantity == crate::ui::trace_look::TraceQuantity::Radiance
+    );
 }
 
 #[test]
@@ -142,4 +145,56 @@ fn signs_and_marks_can_be_taken_off_the_field() {
     assert!(!field(&mut trial).contains('C') && !field(&mut trial).contains('X'));
     trial.keys("y Y");
     assert!(field(&mut trial).contains('C') && field(&mut trial).contains('X'));
+}
+
+#[test]
+fn spectra_are_shown_in_three_quantities_and_as_differences() {
+    let (_place, mut trial) = one_granule();
+    // Footprint n is a black body at 250 + n kelvins.
+    trial.keys("Right Right x g");
+    assert!(trial.screen(120, 40).contains("11.111 um  250.00 K"), "{}", trial.screen(120, 40));
+    trial.keys("b b");
+    // A black body absorbs nothing of its own window's radiation.
+    assert!(trial.screen(120, 40).contains("absorption"));
+    assert!(trial.screen(120, 40).contains("11.111 um  0.0000"), "{}", trial.screen(120, 40));
+    trial.keys("b d");
+    assert_eq!(trial.message(), "differences to the granule's mean");
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains("(0, 0) less the granule's mean"), "{screen}");
+    trial.keys("d");
+    assert_eq!(trial.message(), "differences to pin a");
+    assert!(trial.screen(120, 40).contains("11.111 um  -2.0000 K"), "{}", trial.screen(120, 40));
+    trial.keys("d");
+    assert_eq!(trial.message(), "spectra as they are");
+}
+
+#[test]
+fn a_reference_comes_out_of_a_file() {
+    let place = Place::with(&["lowen_001.nc"]);
+    let mut trial = place.review(&["lowen_001.nc"]);
+    let path = place.path("clear.csv");
+    std::fs::write(&path, "wavenumber_cm-1,bt_K\n900,240\n831,241\n").unwrap();
+    trial.types(&format!(":reference {}", path.display())).keys("Enter");
+    assert_eq!(trial.message(), "differences to clear.csv");
+    assert!(trial.screen(120, 40).contains("11.111 um  10.000 K"), "{}", trial.screen(120, 40));
+    trial.types(":reference nowhere.csv").keys("Enter");
+    assert!(trial.message().starts_with("nowhere.csv is no reference: "), "{}", trial.message());
+}
+
+#[test]
+fn an_envelope_is_that_of_the_selection() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("v Right Down Q");
+    assert_eq!(trial.message(), "lowest, quartiles and highest of box of 4");
+    let envelope = trial.bench().look.envelope.as_ref().unwrap();
+    // Footprints 0, 1, 6 and 7, at 250, 251, 256 and 257 K.
+    let at: Vec<f64> =
+        envelope.spectra.levels.iter().map(|level| level[0].temperatures[0].round()).collect();
+    assert_eq!(at, [250.0, 250.0, 251.0, 256.0, 257.0]);
+    trial.keys("Q Esc Q");
+    assert_eq!(trial.message(), "lowest, quartiles and highest of all footprints");
+    trial.keys("P");
+    assert_eq!(trial.message(), "Planck curves at 220, 240, 260, 280, 300 K");
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains("300 K") && screen.contains("radiance"), "{screen}");
 }

@@ -11,6 +11,7 @@ mod status;
 mod strip;
 mod tests_say;
 mod trace;
+mod trace_values;
 mod tray;
 mod under_cursor;
 

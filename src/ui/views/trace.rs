@@ -3,14 +3,16 @@
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 
-use crate::review::{BandSpectrum, Spectrum};
-use crate::spectral::ABSORPTION_BANDS;
+use super::trace_values::{self, Values};
+use crate::spectral::{ABSORPTION_BANDS, planck};
 use crate::ui::app::{App, Table};
 use crate::ui::bench::Bench;
 use crate::ui::channels::Channels;
 use crate::ui::panes::Pane;
-use crate::ui::panes::trace::{self, BandName, ChannelMark, Curve, Segment, TraceView};
-use crate::units::RadianceUnit;
+use crate::ui::panes::trace::{
+    self, Area, BandName, Bar, ChannelMark, Curve, Guide, Mark, Segment, TraceView,
+};
+use crate::ui::trace_look::TraceQuantity;
 
 /// Draws the Trace.
 pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
@@ -22,11 +24,18 @@ pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
 #[derive(Default)]
 struct TraceParts {
     title: String,
+    quantity: String,
     unit: String,
     empty: String,
     words: String,
-    /// The cursor's spectrum first, then the pinned ones: per band, in ascending order.
-    spectra: Vec<(Option<char>, Vec<Vec<f64>>)>,
+    /// The cursor's spectrum first, then the pinned ones.
+    spectra: Vec<(Option<char>, Values)>,
+    /// The five levels of the envelope.
+    levels: Vec<Values>,
+    /// Planck curves with their temperatures.
+    planck: Vec<(String, Values)>,
+    bars: Vec<Bar>,
+    marks: Vec<Mark>,
 }
 
 impl TraceParts {
@@ -37,23 +46,30 @@ impl TraceParts {
             let empty = if opening { "opening…" } else { "no granule is on the table" };
             return TraceParts { empty: empty.to_owned(), ..TraceParts::default() };
         };
-        let unit = if bench.radiance { RadianceUnit::WORKING.label() } else { "K".to_owned() };
-        let empty = match &bench.spectrum_problem {
-            Some(problem) => format!("no spectrum: {problem}"),
-            None if bench.spectrum.is_none() => "reading…".to_owned(),
-            None => String::new(),
-        };
-        let cursor = bench.spectrum.iter().map(|spectrum| (None, sorted(bench, spectrum)));
+        let sorted = |bands: &[_]| trace_values::of(bench, bands);
+        let cursor = bench.spectrum.iter().map(|spectrum| (None, sorted(&spectrum.bands)));
         let pins = bench
             .pins
             .iter()
-            .filter_map(|pin| Some((Some(pin.letter), sorted(bench, pin.spectrum.as_ref()?))));
+            .filter_map(|pin| Some((Some(pin.letter), sorted(&pin.spectrum.as_ref()?.bands))));
+        let look = &bench.look;
+        // The absorption of each footprint goes by its own window: levels of it would be no curves.
+        let has_levels = look.quantity != TraceQuantity::Absorption;
+        let levels = look.envelope.iter().filter(|_| has_levels).flat_map(|envelope| {
+            envelope.spectra.levels.iter().map(|level| sorted(level)).collect::<Vec<_>>()
+        });
+        let unit = trace_values::unit(bench);
         TraceParts {
-            title: format!("footprint {}", bench.position_words(bench.cursor)),
+            title: title(bench),
+            quantity: quantity(bench),
             words: channel_words(bench, &unit, app.theme.ascii),
             unit,
-            empty,
+            empty: empty(bench),
             spectra: cursor.chain(pins).collect(),
+            levels: levels.collect(),
+            planck: planck_curves(bench),
+            bars: trace_values::bars(bench),
+            marks: look.used.iter().map(|wavenumber| Mark { wavenumber: *wavenumber }).collect(),
         }
     }
 
@@ -64,28 +80,39 @@ impl TraceParts {
             .map(|band| BandName { label: band.label, low: band.low, high: band.high })
             .collect();
         let bench = app.bench();
-        let curves: Vec<Curve<'_>> = match bench {
-            Some(bench) => self
-                .spectra
-                .iter()
-                .map(|(letter, bands)| Curve {
-                    letter: *letter,
-                    segments: segments(&bench.channels, bands),
-                })
-                .collect(),
-            None => Vec::new(),
+        let pieces =
+            |values| bench.map_or_else(Vec::new, |bench| segments(&bench.channels, values));
+        let curves: Vec<Curve<'_>> = self
+            .spectra
+            .iter()
+            .map(|(letter, values)| Curve { letter: *letter, segments: pieces(values) })
+            .collect();
+        let guides: Vec<Guide<'_>> = self
+            .planck
+            .iter()
+            .map(|(label, values)| Guide { label, segments: pieces(values) })
+            .collect();
+        let (areas, median) = match self.levels.as_slice() {
+            [lowest, lower, median, upper, highest] => {
+                let area = |low, high, inner| Area { low: pieces(low), high: pieces(high), inner };
+                (vec![area(lowest, highest, false), area(lower, upper, true)], pieces(median))
+            }
+            _ => (Vec::new(), Vec::new()),
         };
         let mark = bench.and_then(Bench::channel_wavenumber);
         draw(&TraceView {
             title: &self.title,
-            quantity: match bench {
-                Some(bench) if bench.radiance => "radiance",
-                _ => "BT",
-            },
+            quantity: &self.quantity,
             unit: &self.unit,
             curves: &curves,
+            guides: &guides,
+            areas: &areas,
+            median: &median,
+            bars: &self.bars,
+            marks: &self.marks,
             x: bench.map_or((600.0, 2800.0), |bench| bench.window.shown()),
             y: None,
+            least: bench.map_or(0.0, least),
             channel: mark.map(|wavenumber| ChannelMark { wavenumber, words: &self.words }),
             bands: &bands,
             empty: &self.empty,
@@ -101,20 +128,49 @@ pub fn wavenumber_under(app: &App, column: u16, row: u16) -> Option<f64> {
     parts.with_view(app, |view| trace::wavenumber_at(view, area, column, row))
 }
 
-/// The quantity on show, each band in ascending order of wavenumber.
-fn sorted(bench: &Bench, spectrum: &Spectrum) -> Vec<Vec<f64>> {
-    let bands = bench.channels.bands().iter().zip(&spectrum.bands);
-    bands
-        .map(|(channels, band)| {
-            let values = quantity(bench, band);
-            let at = |index: &usize| values.get(*index).copied().unwrap_or(f64::NAN);
-            channels.indices.iter().map(at).collect()
-        })
-        .collect()
+/// A hundredth of the black body's radiation shows no absorption worth a look.
+fn least(bench: &Bench) -> f64 {
+    if bench.look.quantity == TraceQuantity::Absorption { 0.01 } else { 0.0 }
 }
 
-fn quantity<'a>(bench: &Bench, band: &'a BandSpectrum) -> &'a [f64] {
-    if bench.radiance { &band.radiances } else { &band.temperatures }
+fn title(bench: &Bench) -> String {
+    let footprint = format!("footprint {}", bench.position_words(bench.cursor));
+    match bench.reference_words() {
+        Some(reference) => format!("{footprint} less {reference}"),
+        None => footprint,
+    }
+}
+
+fn quantity(bench: &Bench) -> String {
+    let name = bench.look.quantity.name();
+    match &bench.look.envelope {
+        Some(envelope) => format!("{name}, {}", envelope.words),
+        None => name.to_owned(),
+    }
+}
+
+fn empty(bench: &Bench) -> String {
+    match &bench.spectrum_problem {
+        Some(problem) => format!("no spectrum: {problem}"),
+        None if bench.spectrum.is_none() => "reading…".to_owned(),
+        None => String::new(),
+    }
+}
+
+/// Planck curves belong to radiances as they are; differences to something have none.
+fn planck_curves(bench: &Bench) -> Vec<(String, Values)> {
+    let look = &bench.look;
+    if look.quantity != TraceQuantity::Radiance || look.reference.is_some() {
+        return Vec::new();
+    }
+    let curve = |kelvin: &f64| {
+        let bands = bench.channels.bands().iter();
+        let values = bands.map(|band| {
+            band.wavenumbers.iter().map(|wavenumber| planck(*wavenumber, *kelvin)).collect()
+        });
+        (format!("{kelvin} K"), values.collect())
+    };
+    look.planck.iter().map(curve).collect()
 }
 
 fn segments<'a>(channels: &'a Channels, bands: &'a [Vec<f64>]) -> Vec<Segment<'a>> {
@@ -136,16 +192,13 @@ fn channel_words(bench: &Bench, unit: &str, ascii: bool) -> String {
     let Some(wavenumber) = bench.channel_wavenumber() else { return String::new() };
     let (gap, micro) = if ascii { ("  ", "um") } else { (" · ", "µm") };
     let mut words = format!("{wavenumber:.2} cm-1{gap}{:.3} {micro}", 1e4 / wavenumber);
-    if let Some(value) = value_in_hand(bench) {
-        words += &format!("{gap}{} {unit}", super::number(value));
+    if let Some(value) = trace_values::in_hand(bench) {
+        let unit = if unit.is_empty() { String::new() } else { format!(" {unit}") };
+        let value = match bench.look.quantity {
+            TraceQuantity::Absorption => format!("{value:.4}"),
+            _ => super::number(value),
+        };
+        words += &format!("{gap}{value}{unit}");
     }
     words
-}
-
-/// The value of the channel in hand at the cursor.
-fn value_in_hand(bench: &Bench) -> Option<f64> {
-    let channel = bench.channels.channel(bench.channel)?;
-    let index = *bench.channels.bands().get(channel.band)?.indices.get(channel.place)?;
-    let band = bench.spectrum.as_ref()?.bands.get(channel.band)?;
-    quantity(bench, band).get(index).copied().filter(|value| !value.is_nan())
 }

@@ -46,6 +46,19 @@ impl Braille {
         }
     }
 
+    /// Sets every so manieth dot of a column, so that columns side by side make a pattern.
+    pub fn shade(&mut self, column: usize, from: usize, to: usize, every: usize) {
+        if column >= self.columns() {
+            return;
+        }
+        let last = from.max(to).min(self.rows().saturating_sub(1));
+        // Two columns on, the pattern is shifted by half.
+        let shift = column * (every / 2).max(1);
+        for row in (from.min(to)..=last).filter(|row| (row + shift).is_multiple_of(every.max(1))) {
+            self.dot(column, row);
+        }
+    }
+
     fn dot(&mut self, column: usize, row: usize) {
         let width = usize::from(self.area.width);
         let (cell, bit) = match self.ascii {

@@ -5,7 +5,7 @@ use ratatui::layout::Rect;
 use unicode_width::UnicodeWidthStr;
 
 use super::plot::{Plot, UNIT};
-use super::{TraceView, axes, bands, curves};
+use super::{TraceView, axes, bands, behind, curves};
 use crate::ui::colour::{Theme, Tone};
 use crate::ui::widgets::{Frame, cut, put, put_right};
 
@@ -26,7 +26,9 @@ pub fn draw(view: &TraceView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer
         return;
     };
     axes::draw(&plot, view.unit, theme, buffer);
+    behind::draw(view, &plot, theme, buffer);
     let drawn = curves::draw(view, &plot, theme, buffer);
+    behind::draw_over(view, &plot, theme, buffer);
     bands::draw(&plot, view.bands, theme, buffer);
     if let Some(channel) = &view.channel {
         curves::draw_channel(channel, &plot, theme, buffer);
@@ -50,8 +52,9 @@ pub fn wavenumber_at(view: &TraceView<'_>, area: Rect, column: u16, row: u16) ->
 fn titles(view: &TraceView<'_>, width: u16, ascii: bool) -> (String, String) {
     let room = usize::from(width).saturating_sub(" Trace ".len() + 4);
     let words = view.channel.map_or("", |channel| channel.words);
-    // A long unit finds no room above the values.
-    let unit = if view.unit.width() > UNIT { view.unit } else { "" };
+    // A long unit finds no room above the values; it may stand behind the value already.
+    let is_said = view.unit.width() <= UNIT || words.ends_with(view.unit);
+    let unit = if is_said { "" } else { view.unit };
     let parts = |parts: [&str; 3]| {
         let said: Vec<&str> = parts.into_iter().filter(|part| !part.is_empty()).collect();
         said.join(", ")
@@ -105,8 +108,14 @@ mod tests {
             quantity: "BT",
             unit: "K",
             curves,
+            guides: &[],
+            areas: &[],
+            median: &[],
+            bars: &[],
+            marks: &[],
             x: (600.0, 1000.0),
             y: Some((200.0, 300.0)),
+            least: 0.0,
             channel: None,
             bands: &[],
             empty: "",

@@ -4,9 +4,10 @@ mod axes;
 mod bands;
 mod curves;
 mod draw;
+mod behind;
 mod envelope;
 mod plot;
 mod view;
 
 pub use draw::{draw, wavenumber_at};
-pub use view::{BandName, ChannelMark, Curve, Segment, TraceView};
+pub use view::{Area, BandName, Bar, ChannelMark, Curve, Guide, Mark, Segment, TraceView};

@@ -100,7 +100,9 @@ fn is_range((low, high): (f64, f64)) -> bool {
 
 /// A range that holds every value on show, with a little room.
 fn fitting(view: &TraceView<'_>) -> (f64, f64) {
-    let on_show = view.curves.iter().flat_map(|curve| &curve.segments).flat_map(|segment| {
+    let curves = view.curves.iter().flat_map(|curve| &curve.segments);
+    let areas = view.areas.iter().flat_map(|area| area.low.iter().chain(&area.high));
+    let on_show = curves.chain(areas).flat_map(|segment| {
         segment.wavenumbers.iter().zip(segment.values).filter_map(|(wavenumber, value)| {
             let inside = *wavenumber >= view.x.0 && *wavenumber <= view.x.1;
             (inside && value.is_finite()).then_some(*value)
@@ -109,6 +111,10 @@ fn fitting(view: &TraceView<'_>) -> (f64, f64) {
     let (low, high) = on_show.fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), value| {
         (low.min(value), high.max(value))
     });
+    if high - low < view.least {
+        let middle = 0.5 * (low + high);
+        return (middle - 0.5 * view.least, middle + 0.5 * view.least);
+    }
     let margin = 0.04 * (high - low);
     let range = (low - margin, high + margin);
     // Differences in the seventh digit are rounding and no shape: they would fill the plot.

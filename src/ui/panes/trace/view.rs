@@ -11,10 +11,22 @@ pub struct TraceView<'a> {
     pub unit: &'a str,
     /// The spectra; the cursor's first.
     pub curves: &'a [Curve<'a>],
+    /// Curves to compare with, such as those of black bodies.
+    pub guides: &'a [Guide<'a>],
+    /// Filled areas behind the curves, the widest first.
+    pub areas: &'a [Area<'a>],
+    /// The line in the middle of the areas.
+    pub median: &'a [Segment<'a>],
+    /// Noise bars of the cursor's spectrum.
+    pub bars: &'a [Bar],
+    /// Channels to be marked at the foot of the plot.
+    pub marks: &'a [Mark],
     /// Lowest and highest wavenumber on show, cm-1.
     pub x: (f64, f64),
     /// Lowest and highest value on show; `None` fits the values on show.
     pub y: Option<(f64, f64)>,
+    /// Values that differ by less than this make no shape: the range is no narrower.
+    pub least: f64,
     /// The channel in hand.
     pub channel: Option<ChannelMark<'a>>,
     /// Names of absorption bands, the more important first.
@@ -32,6 +44,44 @@ pub struct Curve<'a> {
     pub letter: Option<char>,
     /// The pieces between gaps, in any order. No line is drawn from one to the next.
     pub segments: Vec<Segment<'a>>,
+}
+
+/// A curve to compare with, and what is written on it.
+#[derive(Clone, Debug)]
+pub struct Guide<'a> {
+    /// What it is: "280 K".
+    pub label: &'a str,
+    /// Its pieces.
+    pub segments: Vec<Segment<'a>>,
+}
+
+/// The room between two curves of the same channels.
+#[derive(Clone, Debug)]
+pub struct Area<'a> {
+    /// The lower curve.
+    pub low: Vec<Segment<'a>>,
+    /// The upper one, piece by piece.
+    pub high: Vec<Segment<'a>>,
+    /// Whether it lies within another: it is filled more densely.
+    pub inner: bool,
+}
+
+/// A channel's value with a reach to both sides.
+#[derive(Clone, Copy, Debug)]
+pub struct Bar {
+    /// Where the channel lies, cm-1.
+    pub wavenumber: f64,
+    /// The lower end.
+    pub low: f64,
+    /// The upper end.
+    pub high: f64,
+}
+
+/// A channel to be marked: the layer or test in hand is made from it.
+#[derive(Clone, Copy, Debug)]
+pub struct Mark {
+    /// Where it lies, cm-1.
+    pub wavenumber: f64,
 }
 
 /// An unbroken run of channels.
