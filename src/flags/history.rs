@@ -2,6 +2,8 @@
 
 use std::collections::HashMap;
 
+use jiff::Timestamp;
+
 use super::{Act, Decision, DecisionId};
 
 /// Decisions in the one order in which everybody folds them, and which of them stand.
@@ -106,6 +108,29 @@ pub fn redo_target(decisions: &[Decision], person: &str) -> Option<DecisionId> {
         }
     }
     None
+}
+
+/// When a person last decided about a granule, for undo and redo across granules.
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]
+pub struct OwnTimes {
+    /// Of the decision that undo would take back.
+    pub undo: Option<Timestamp>,
+    /// Of the undo that redo would take back, by this granule alone: a decision about another one
+    /// that came later ends it.
+    pub redo: Option<Timestamp>,
+    /// Of the latest decision that is neither undo nor redo.
+    pub decided: Option<Timestamp>,
+}
+
+/// When a person last decided about the granule that these decisions are about.
+pub fn own_times(decisions: &[Decision], person: &str) -> OwnTimes {
+    let at = |id: DecisionId| decisions.iter().find(|one| one.id == id).map(|one| one.at);
+    let new = decisions.iter().filter(|one| own(one, person) && !is_revocation(one));
+    OwnTimes {
+        undo: undo_target(decisions, person).and_then(at),
+        redo: redo_target(decisions, person).and_then(at),
+        decided: new.map(|one| one.at).max(),
+    }
 }
 
 fn is_revocation(decision: &Decision) -> bool {

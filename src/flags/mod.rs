@@ -41,7 +41,7 @@ pub use campaign_settings::{CampaignSettings, SETTINGS_FILE};
 pub use clopper_pearson::clopper_pearson;
 pub use decision::{Act, ChannelName, Decision, DecisionId, FlagAt, Origin, Ruling};
 pub use footprint_set::FootprintSet;
-pub use history::{redo_target, standing, undo_target};
+pub use history::{OwnTimes, own_times, redo_target, standing, undo_target};
 pub use key_settings::KeySetting;
 pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};
 pub use ledger_reader::{LedgerProblem, LedgerReading, Loss, read_ledgers};

@@ -1,7 +1,8 @@
 //! What is left to decide, as cases: neighbouring footprints in doubt are one case, not fifty.
 
+use super::Review;
 use crate::flags::FootprintSet;
-use crate::layers::Neighbours;
+use crate::layers::{Names, Neighbours};
 use crate::screening::Screened;
 
 /// Footprints in doubt that lie beside each other.
@@ -17,7 +18,7 @@ pub struct Case {
 
 /// The cases, the most doubtful first; of equals the larger, then the earlier in the file.
 /// `settled` tells the footprints that a person has decided.
-pub fn cases(
+fn cases(
     screened: &Screened,
     settled: impl Fn(usize) -> bool,
     neighbours: &Neighbours,
@@ -42,6 +43,13 @@ pub fn cases(
             .then(one.worst.cmp(&next.worst))
     });
     cases
+}
+
+impl Review {
+    /// What is left to decide, by what lies beside what on the ground.
+    pub fn cases(&self, screened: &Screened, settled: impl Fn(usize) -> bool) -> Vec<Case> {
+        cases(screened, settled, self.names().neighbours())
+    }
 }
 
 fn case(members: Vec<usize>, doubt: &[f64]) -> Option<Case> {

@@ -19,7 +19,7 @@ mod spectrum;
 mod suggestions;
 mod verbs;
 
-pub use cases::{Case, cases};
+pub use cases::Case;
 pub use exporting::ExportedBy;
 pub use many_spectra::ManySpectra;
 pub use record::Record;

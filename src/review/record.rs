@@ -7,8 +7,8 @@ use jiff::Timestamp;
 
 use crate::flags::{
     Act, Author, Campaign, CampaignError, Counts, Decision, DecisionId, FlagState, GranuleIdentity,
-    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, Replay, Vocabulary, read_ledgers,
-    standing,
+    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, OwnTimes, Replay, Vocabulary,
+    own_times, read_ledgers, standing,
 };
 
 /// The decisions about a granule, their sum, and the writer of our own.
@@ -125,6 +125,21 @@ impl Record {
             self.fold();
         }
         whose
+    }
+
+    /// Takes over what another record of the same granule has read. Returns whose decisions were not
+    /// known here, as [`Record::take_over`] does.
+    pub fn take_over_from(&mut self, other: Record) -> BTreeMap<String, usize> {
+        let problems = std::mem::take(&mut self.problems);
+        let decisions = other.decisions;
+        let whose = self.take_over(LedgerReading { decisions, ..LedgerReading::default() });
+        self.problems = if other.problems.is_empty() { problems } else { other.problems };
+        whose
+    }
+
+    /// When its person last decided here.
+    pub fn own_times(&self) -> OwnTimes {
+        own_times(&self.decisions, &self.person)
     }
 
     /// Hears what the writer reports. Returns whether anything changed.

@@ -206,6 +206,17 @@ impl Record {
         }
     }
 
+    /// The decision that an undo or a redo takes back or puts back; another decision itself.
+    pub fn meant_by<'d>(&'d self, decision: &'d Decision) -> Option<&'d Decision> {
+        let mut meant = decision;
+        // An undo, or a redo of an undo; longer chains nobody makes.
+        for _ in 0..2 {
+            let Act::Revoke { decision } = &meant.act else { break };
+            meant = self.decisions().iter().rev().find(|one| one.id == *decision)?;
+        }
+        Some(meant)
+    }
+
     fn named(&self, id: &DecisionId) -> Option<Decision> {
         self.decisions().iter().rev().find(|decision| decision.id == *id).cloned()
     }

@@ -2,16 +2,20 @@
 
 use std::path::{Path, PathBuf};
 
-use crate::flags::{Counts, GranuleState};
+use crate::flags::{Counts, Decision, FlagState, GranuleState, OwnTimes, Vocabulary, own_times};
 use crate::system::clean_text;
 
 /// How far a granule's review has come, as its ledgers say.
-#[derive(Debug, Clone, PartialEq, Eq)]
+#[derive(Debug, Clone, Default, PartialEq, Eq)]
 pub struct Standing {
     /// The state.
     pub state: GranuleState,
     /// How many footprints are in which state, where their number is known.
     pub counts: Option<Counts>,
+    /// Footprints that tests leave in doubt and no person has settled, where tests have run.
+    pub in_doubt: Option<usize>,
+    /// When the person last decided about it; kept up while it is not on the table.
+    pub own: OwnTimes,
 }
 
 /// One granule of the Tray.
@@ -27,10 +31,40 @@ pub struct Entry {
     pub error: Option<String>,
 }
 
+impl Standing {
+    /// What decisions about a granule of so many footprints amount to, for `person`.
+    pub fn of(
+        footprints: usize,
+        decisions: &[Decision],
+        vocabulary: &Vocabulary,
+        person: &str,
+    ) -> Standing {
+        let state = FlagState::replay(footprints, decisions, vocabulary);
+        let counts = state.counts(vocabulary);
+        let screened = decisions.iter().any(|decision| !decision.by_person());
+        Standing {
+            state: state.granule,
+            in_doubt: screened.then_some(counts.in_doubt),
+            counts: Some(counts),
+            own: own_times(decisions, person),
+        }
+    }
+}
+
 impl Entry {
     /// Whether it is known to be signed off.
     pub fn is_signed_off(&self) -> bool {
         self.standing.as_ref().is_some_and(|standing| standing.state == GranuleState::SignedOff)
+    }
+}
+
+impl Entry {
+    /// Whether something may be left to decide: it is in hand or untouched, and tests left something
+    /// in doubt or have not run.
+    pub fn may_be_in_doubt(&self) -> bool {
+        let Some(standing) = &self.standing else { return true };
+        let open = matches!(standing.state, GranuleState::Untouched | GranuleState::InHand);
+        open && standing.in_doubt != Some(0)
     }
 }
 

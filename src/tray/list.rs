@@ -3,7 +3,9 @@
 use std::collections::BTreeSet;
 use std::path::{Path, PathBuf};
 
-use crate::flags::{Campaign, GranuleState, file_name_part};
+use jiff::Timestamp;
+
+use crate::flags::{Campaign, OwnTimes, file_name_part};
 use crate::system::clean_text;
 
 use super::entry::{Entry, Standing, names};
@@ -61,7 +63,7 @@ impl Tray {
             let may_be_renamed =
                 !renamed.is_empty() && size(&entry.path).is_ok_and(|size| renamed.contains(&size));
             if !stems.contains(&stem(&entry.path)) && !may_be_renamed {
-                entry.standing = Some(Standing { state: GranuleState::Untouched, counts: None });
+                entry.standing = Some(Standing::default());
             }
         }
     }
@@ -99,6 +101,27 @@ impl Tray {
             .find(|next| self.is_usable(*next) && !self.entries[*next].is_signed_off())
     }
 
+    /// The next entry after `number` that can be used and may be in doubt; behind the last one it
+    /// goes on from the beginning.
+    pub fn next_in_doubt(&self, number: usize) -> Option<usize> {
+        let round = (number + 1..self.len()).chain(0..number.min(self.len()));
+        let mut open = round.filter(|next| self.is_usable(*next));
+        open.find(|next| self.entries[*next].may_be_in_doubt())
+    }
+
+    /// The entry beside `number` with the latest moment of those that `moment` picks out of what
+    /// the person decided there.
+    pub fn latest(
+        &self,
+        number: usize,
+        moment: impl Fn(&OwnTimes) -> Option<Timestamp>,
+    ) -> Option<(usize, Timestamp)> {
+        let others = self.entries.iter().enumerate().filter(|(other, _)| *other != number);
+        others
+            .filter_map(|(other, entry)| Some((other, moment(&entry.standing.as_ref()?.own)?)))
+            .max_by_key(|(_, at)| *at)
+    }
+
     fn is_usable(&self, number: usize) -> bool {
         self.entries.get(number).is_some_and(|entry| entry.error.is_none())
     }
@@ -112,13 +135,15 @@ fn stem(path: &Path) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::flags::GranuleState;
 
     fn tray() -> Tray {
         let mut tray = Tray::new(["a.nc", "b.nc", "c.nc", "d.nc"].map(PathBuf::from).to_vec());
         tray.set_error(1, Some("b.nc: no spectra".to_owned()));
         assert_eq!(tray.entry(1).unwrap().error.as_deref(), Some("no spectra"));
         for signed in [0, 2] {
-            tray.set_standing(signed, Standing { state: GranuleState::SignedOff, counts: None });
+            let state = GranuleState::SignedOff;
+            tray.set_standing(signed, Standing { state, ..Standing::default() });
         }
         tray
     }
@@ -131,6 +156,18 @@ mod tests {
         assert_eq!(tray.next(Some(3)), None);
         assert_eq!(tray.previous(2), Some(0));
         assert_eq!(tray.previous(0), None);
+    }
+
+    #[test]
+    fn doubt_is_looked_for_all_around() {
+        let mut tray = tray();
+        assert_eq!(tray.next_in_doubt(0), Some(3), "not known to be plain");
+        assert_eq!(tray.next_in_doubt(3), None);
+        let open = |in_doubt| Standing { in_doubt, ..Standing::default() };
+        tray.set_standing(3, open(Some(0)));
+        tray.set_standing(0, open(Some(7)));
+        assert_eq!(tray.next_in_doubt(2), Some(0));
+        assert_eq!(tray.next_in_doubt(0), None);
     }
 
     #[test]

@@ -21,6 +21,7 @@ use super::screening;
 use super::shown_layer::ShownLayer;
 use super::tracing;
 use super::turning;
+use super::undoing;
 
 /// Takes an answer.
 pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
@@ -73,6 +74,7 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     app.tray.set_error(entry, None);
     let first_layer = app.outside.first_layer.clone();
     let mut bench = Bench::new(entry, review, first_layer);
+    bench.doubt.wanted = std::mem::take(&mut app.seek_case);
     let (fill, record, quality) = (app.request(), app.request(), app.request());
     bench.filling.request = fill;
     bench.awaited.record = record;
@@ -158,8 +160,11 @@ fn record(
     match found {
         Ok((record, place)) => {
             let problem = record.problems().first().cloned();
+            let record = unwritten(&mut app.left, record);
+            let Some(bench) = app.bench_mut() else { return Vec::new() };
             bench.record = RecordState::Open(record);
             bench.compare_tests();
+            bench.find_cases();
             let asked_early = std::mem::take(&mut bench.asked_early);
             deciding::update_tray(app);
             if let Some(problem) = problem {
@@ -168,7 +173,9 @@ fn record(
                 // The key may have been meant for what was on show then, so it is not carried out.
                 app.say("the ledgers are read: press the key again");
             }
-            place.map_or_else(Vec::new, |place| go_to_place(app, &place))
+            let mut jobs = place.map_or_else(Vec::new, |place| go_to_place(app, &place));
+            jobs.extend(undoing::done_elsewhere(app));
+            jobs
         }
         Err(why) => {
             bench.record = RecordState::Failed(why.clone());
@@ -176,6 +183,18 @@ fn record(
             Vec::new()
         }
     }
+}
+
+/// The record that was left while its last decisions were on the way to the disk, where there is
+/// one of this granule: what was read may lack them.
+fn unwritten(left: &mut Vec<Record>, read: Box<Record>) -> Box<Record> {
+    let Some(place) = left.iter().position(|one| one.identity().hash == read.identity().hash)
+    else {
+        return read;
+    };
+    let mut record = left.swap_remove(place);
+    record.take_over_from(*read);
+    Box::new(record)
 }
 
 /// Shows what others have decided meanwhile.
@@ -188,6 +207,7 @@ fn reread(app: &mut App, request: u64, found: LedgerReading) -> Vec<Job> {
     let new = record.take_over(found);
     if !new.is_empty() {
         bench.compare_tests();
+        bench.find_cases();
         app.changed = true;
         deciding::update_tray(app);
         let all: usize = new.values().sum();

@@ -15,6 +15,7 @@ use super::bench::{Bench, RecordState};
 use super::colour::{Theme, Tone};
 use super::event::Ending;
 use super::keymap::Keymap;
+use super::keys::Action;
 use super::line::History;
 use super::overlay::Overlay;
 use super::panes::{Arrangement, Pane, ScreenLayout};
@@ -82,6 +83,10 @@ pub struct App {
     pub table: Table,
     /// The first granule that is not signed off is still being looked for.
     pub searching: bool,
+    /// The first case of doubt of the granule being opened is to be shown.
+    pub seek_case: bool,
+    /// What is to be done as soon as the ledgers of the granule being opened are read.
+    pub then: Option<Action>,
     /// Records of granules left while their last decisions were still on the way to the disk.
     pub left: Vec<Record>,
     /// How the panes stand.
@@ -130,6 +135,8 @@ impl App {
             tray_cursor: 0,
             table: Table::Empty,
             searching: false,
+            seek_case: false,
+            then: None,
             left: Vec::new(),
             panes: Arrangement::default(),
             overlay: Overlay::None,

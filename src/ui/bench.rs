@@ -5,12 +5,14 @@ use std::sync::Arc;
 
 use crate::flags::FootprintSet;
 use crate::granule::Channel;
-use crate::review::{Review, Spectrum};
+use crate::review::{Record, Review, Spectrum};
+use crate::tray::Standing;
 
 pub use super::bench_parts::{
     Awaited, Filling, Index, Overtaken, Pinned, Quality, RecordState, Signs, Tests, overtake,
 };
 use super::channels::Channels;
+use super::doubting::Doubt;
 use super::overlay::Selection;
 use super::panes::Arrangement;
 use super::panes::field::Placement;
@@ -44,6 +46,10 @@ pub struct Bench {
     pub anchor: Option<usize>,
     /// One side of a value of the layer, while it is selected.
     pub side: Option<Side>,
+    /// A case of doubt, while it is selected.
+    pub case: Option<Selection>,
+    /// What is left in doubt.
+    pub doubt: Doubt,
     /// The layer on show.
     pub layer: ShownLayer,
     /// The layer that was on show before, to go back to.
@@ -122,6 +128,8 @@ impl Bench {
             cursor: 0,
             anchor: None,
             side: None,
+            case: None,
+            doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),
             other_layer: None,
             wanted,
@@ -157,6 +165,23 @@ impl Bench {
         self.tests.on_record = compared.unwrap_or_default();
     }
 
+    /// How far it has come, for the Tray. When the person last decided here is left out: that
+    /// counts only while it is not on the table.
+    pub fn standing(&self, record: &Record) -> Standing {
+        let screened = self.tests.screened.is_some();
+        let by_tests = || record.counts().by_test > 0;
+        let in_doubt = match screened {
+            true => Some(self.doubt.footprints()),
+            false => by_tests().then_some(record.counts().in_doubt),
+        };
+        Standing {
+            state: record.state().granule,
+            counts: Some(record.counts().clone()),
+            in_doubt,
+            ..Standing::default()
+        }
+    }
+
     /// How many footprints there are.
     pub fn footprints(&self) -> usize {
         self.placement.footprints()
@@ -176,6 +201,9 @@ impl Bench {
     pub fn selection(&self) -> Selection {
         if let Some(side) = self.side {
             return self.side_selection(side);
+        }
+        if let (Some(case), None) = (&self.case, self.anchor) {
+            return case.clone();
         }
         match self.anchor {
             Some(anchor) => {
@@ -216,7 +244,7 @@ impl Bench {
 
     /// Lets go of box and side; false if there was neither.
     pub fn drop_selection(&mut self) -> bool {
-        self.anchor.take().is_some() | self.side.take().is_some()
+        self.anchor.take().is_some() | self.side.take().is_some() | self.case.take().is_some()
     }
 
     /// The wavenumber of the channel in hand, cm-1.

@@ -7,7 +7,6 @@ use jiff::Timestamp;
 
 use crate::flags::{Act, Decision, GranuleState, Ruling, Scope};
 use crate::review::{Record, Refusal};
-use crate::tray::Standing;
 
 use super::app::App;
 use super::bench::RecordState;
@@ -15,6 +14,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
 use super::overlay::{FlagOrder, FlagPrompt, Overlay, Selection};
+use super::undoing;
 
 /// Does what a key of deciding says.
 pub fn decide(app: &mut App, action: Action) -> Vec<Job> {
@@ -25,12 +25,7 @@ pub fn decide(app: &mut App, action: Action) -> Vec<Job> {
         Action::FlagAgain => flag_again(app),
         Action::Assess => assess(app),
         Action::SignOff => ask_sign_off(app),
-        Action::Undo => change(app, |record, now| {
-            record.undo(now).map(|decision| format!("undone: {}", words(&decision)))
-        }),
-        Action::Redo => change(app, |record, now| {
-            record.redo(now).map(|decision| format!("redone: {}", words(&decision)))
-        }),
+        Action::Undo | Action::Redo => undoing::undo_or_redo(app, action),
         _ => change(app, |record, now| record.reopen(now).map(|()| "taken in hand again".into())),
     }
 }
@@ -40,8 +35,20 @@ pub fn change(
     app: &mut App,
     verb: impl FnOnce(&mut Record, Timestamp) -> Result<String, Refusal>,
 ) -> Vec<Job> {
+    decided(app, verb);
+    Vec::new()
+}
+
+/// The same; true where something was decided.
+pub fn decided(
+    app: &mut App,
+    verb: impl FnOnce(&mut Record, Timestamp) -> Result<String, Refusal>,
+) -> bool {
     let now = app.now();
-    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let Some(bench) = app.bench_mut() else {
+        no_granule(app);
+        return false;
+    };
     let outcome = match &mut bench.record {
         RecordState::Open(record) => verb(record, now).map_err(|refusal| refusal.to_string()),
         RecordState::Reading => {
@@ -50,16 +57,20 @@ pub fn change(
         }
         RecordState::Failed(why) => Err(format!("nothing can be decided: {why}")),
     };
+    let done = outcome.is_ok();
     match outcome {
-        Ok(words) => app.say(words),
+        Ok(words) => {
+            bench.find_cases();
+            app.say(words);
+        }
         Err(words) => app.warn(words),
     }
     update_tray(app);
-    Vec::new()
+    done
 }
 
 /// Says why nothing can be decided yet, or at all.
-fn not_ready(app: &mut App) -> Vec<Job> {
+pub fn not_ready(app: &mut App) -> Vec<Job> {
     change(app, |_, _| Ok(String::new()))
 }
 
@@ -67,9 +78,8 @@ fn not_ready(app: &mut App) -> Vec<Job> {
 pub fn update_tray(app: &mut App) {
     let Some(bench) = app.bench() else { return };
     let Some(record) = bench.record.open() else { return };
-    let (state, counts) = (record.state().granule, Some(record.counts().clone()));
-    let entry = bench.entry;
-    app.tray.set_standing(entry, Standing { state, counts });
+    let (entry, standing) = (bench.entry, bench.standing(record));
+    app.tray.set_standing(entry, standing);
 }
 
 fn begin_box(app: &mut App) -> Vec<Job> {
@@ -148,7 +158,7 @@ fn assess(app: &mut App) -> Vec<Job> {
     jobs
 }
 
-fn drop_selection(app: &mut App) {
+pub fn drop_selection(app: &mut App) {
     if let Some(bench) = app.bench_mut() {
         bench.drop_selection();
     }

@@ -10,6 +10,7 @@ use super::colour::Tone;
 use super::jobs::Job;
 use super::keys::Action;
 use super::looking;
+use super::{deciding, doubting};
 
 /// Runs the tests over the granule on the table; the newest request wins.
 pub fn start(app: &mut App) -> Vec<Job> {
@@ -37,6 +38,9 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
             bench.tests.screened = Some(screened);
             bench.tests.problem = None;
             bench.compare_tests();
+            bench.find_cases();
+            deciding::update_tray(app);
+            return doubting::tests_have_run(app);
         }
         Err(why) => {
             bench.tests.screened = None;

@@ -3,8 +3,10 @@
 
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
+use std::sync::atomic::{AtomicI64, Ordering};
 use std::time::{Duration, Instant};
 
+use jiff::{SignedDuration, Timestamp};
 use ratatui::Terminal;
 use ratatui::backend::TestBackend;
 use ratatui::layout::Size;
@@ -63,9 +65,10 @@ pub fn write_granule(path: &Path) {
     writer.close().unwrap();
 }
 
-/// A folder with granules and a campaign.
+/// A folder with granules and a campaign. Its clock goes on by a second at every look.
 pub struct Place {
     folder: tempfile::TempDir,
+    seconds: Arc<AtomicI64>,
 }
 
 impl Place {
@@ -75,7 +78,16 @@ impl Place {
         for name in names {
             write_granule(&folder.path().join(name));
         }
-        Place { folder }
+        Place { folder, seconds: Arc::default() }
+    }
+
+    fn clock(&self) -> Arc<dyn Fn() -> Timestamp + Send + Sync> {
+        let seconds = Arc::clone(&self.seconds);
+        let noon: Timestamp = "2026-03-01T12:00:00Z".parse().unwrap();
+        Arc::new(move || {
+            let passed = seconds.fetch_add(1, Ordering::Relaxed);
+            noon.checked_add(SignedDuration::from_secs(passed)).unwrap()
+        })
     }
 
     /// A path in the folder.
@@ -109,7 +121,7 @@ impl Place {
             campaign,
             author: Author { person: person.into(), host: "desk".into(), process: 7 },
             program: "0.0.0".to_owned(),
-            clock: Arc::new(|| "2026-03-01T12:00:00Z".parse().unwrap()),
+            clock: self.clock(),
             keys: Vec::new(),
             first_layer: None,
         };

@@ -7,6 +7,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
+use crate::tray::Standing;
 
 /// The first jobs: look what the ledgers say about all granules, and open the first that is not
 /// signed off. Granules that no ledger goes by the name of are taken for untouched without looking.
@@ -95,6 +96,8 @@ pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
         return Vec::new();
     };
     app.searching = false;
+    app.then = None;
+    app.seek_case = false;
     let mut jobs = keep_place(app);
     put_away(app);
     let request = app.request();
@@ -157,6 +160,13 @@ fn put_away(app: &mut App) {
     bench.filling.cancel.cancel();
     bench.tests.cancel.cancel();
     bench.overtaken.end_all();
+    let own = bench
+        .record
+        .open()
+        .map(|record| Standing { own: record.own_times(), ..bench.standing(record) });
+    if let Some(standing) = own {
+        app.tray.set_standing(bench.entry, standing);
+    }
     if let RecordState::Open(record) = bench.record
         && record.pending() > 0
     {

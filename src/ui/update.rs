@@ -7,7 +7,9 @@ use super::key::{Code, Key};
 use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
-use super::{answers, deciding, looking, moving, prompts, screening, tracing, turning, typing};
+use super::{
+    answers, deciding, doubting, looking, moving, prompts, screening, tracing, turning, typing,
+};
 
 /// Changes the state by an event and names the jobs to be started.
 pub fn update(app: &mut App, event: Event) -> Vec<Job> {
@@ -84,6 +86,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         }
         A::SignOff | A::Reopen => deciding::decide(app, action),
         A::RunTests => screening::start(app),
+        A::NextCase | A::PreviousCase | A::Accept | A::Overrule => doubting::doubt(app, action),
         A::Export => deciding::export(app, None),
         A::AskLayer | A::AskChannel | A::Side | A::Comment | A::SetAside | A::Command => {
             prompts::open(app, action)

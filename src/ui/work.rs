@@ -4,7 +4,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::time::{Duration, Instant};
 
-use crate::flags::{FlagState, read_ledgers};
+use crate::flags::read_ledgers;
 use crate::granule::{GranuleError, VariableRole};
 use crate::review::{ExportedBy, Record, ReferenceSpectrum, Review, rulebook_of};
 use crate::screening::Screened;
@@ -198,8 +198,7 @@ fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
     let decisions = read_ledgers(&outside.campaign, &identity).decisions;
     let vocabulary = &outside.campaign.settings().vocabulary;
     let footprints = review.granule().footprints().count();
-    let state = FlagState::replay(footprints, &decisions, vocabulary);
-    Ok(Standing { state: state.granule, counts: Some(state.counts(vocabulary)) })
+    Ok(Standing::of(footprints, &decisions, vocabulary, &outside.author.person))
 }
 
 fn export(

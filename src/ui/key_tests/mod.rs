@@ -1,11 +1,14 @@
 //! Start state, keys, expected.
 
 mod deciding;
+mod doubting;
 mod looking;
 mod moving;
 mod program;
+mod screening;
 mod selecting;
 mod turning;
+mod undoing;
 
 use super::trial::{LINES, POSITIONS, Place, Trial};
 

@@ -133,7 +133,7 @@ fn pending(bench: &Bench) -> Vec<bool> {
 }
 
 fn selected(bench: &Bench) -> Vec<bool> {
-    if !bench.marks || bench.side.is_none() && bench.anchor.is_none() {
+    if !bench.marks || bench.side.is_none() && bench.anchor.is_none() && bench.case.is_none() {
         return Vec::new();
     }
     let mut selected = vec![false; bench.footprints()];

@@ -23,6 +23,14 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         if app.pending() == 0 && record.decisions().iter().any(|one| one.by_person()) {
             facts.push(("kept".to_owned(), Tone::Good));
         }
+        if bench.tests.screened.is_some() {
+            let (left, tone) = match bench.doubt.cases.len() {
+                0 => ("no doubt left".to_owned(), Tone::Good),
+                1 => ("1 case in doubt".to_owned(), Tone::Strong),
+                cases => (format!("{cases} cases in doubt"), Tone::Strong),
+            };
+            facts.push((left, tone));
+        }
         let counts = record.counts();
         facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
         facts.push((format!("{} no flag", counts.no_flag), Tone::Plain));
@@ -45,7 +53,9 @@ fn filling(bench: &Bench) -> Option<(String, Tone)> {
 
 /// Keys worth knowing at this moment: (key, what it does).
 pub fn hints(app: &App) -> Vec<(String, &'static str)> {
-    let selecting = app.bench().is_some_and(|bench| bench.anchor.is_some() || bench.side.is_some());
+    let selecting = app.bench().is_some_and(|bench| {
+        bench.anchor.is_some() || bench.side.is_some() || bench.case.is_some()
+    });
     let actions: &[(Action, &'static str)] = if selecting {
         &[
             (Action::Flag, "flag"),

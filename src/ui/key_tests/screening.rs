@@ -1,10 +1,10 @@
 //! What the tests say on the screen: start state, keys, expected.
 
-use super::trial::{Place, Trial};
 use crate::flags::{Author, Campaign};
 use crate::granule::Opening;
 use crate::netcdf_files::ReaderProgram;
 use crate::review::{OnRecord, Record, Review, rulebook_of};
+use crate::ui::trial::{Place, Trial};
 
 /// Footprint n is at 250 + n kelvins: below 260 K it is cloudy, above 275.2 K dusty. Around the
 /// limits the tests are in doubt: at footprints 9, 10 and 11, and at 25.

@@ -1,0 +1,135 @@
+//! Doubt first: start state, keys, expected. By the rulebook of the trial, footprints 9, 10 and 11
+//! are in doubt, and so is 25; the first case is the more doubtful one.
+
+use super::append_byte;
+use super::screening::{place, screen};
+use crate::flags::{Act, ReviewState, Ruling};
+use crate::ui::overlay::Overlay;
+use crate::ui::trial::{Place, Trial};
+
+fn one_granule() -> (Place, Trial) {
+    let place = place(&["lowen_001.nc"]);
+    let trial = place.review(&["lowen_001.nc"]);
+    (place, trial)
+}
+
+fn selected(trial: &Trial) -> Vec<usize> {
+    trial.bench().selection().footprints.iter().collect()
+}
+
+#[test]
+fn a_key_goes_to_the_most_doubtful_case_and_selects_all_of_it() {
+    let (_place, mut trial) = one_granule();
+    assert!(trial.screen(160, 48).contains("2 cases in doubt"));
+    trial.keys("Space");
+    assert_eq!((trial.bench().cursor, selected(&trial)), (10, vec![9, 10, 11]));
+    assert!(trial.message().starts_with("3 in doubt to 1.00"), "{}", trial.message());
+    trial.keys("Space");
+    assert_eq!((trial.bench().cursor, selected(&trial)), (25, vec![25]));
+    trial.keys("Space");
+    assert!(trial.message().starts_with("2 cases were left"), "{}", trial.message());
+    trial.keys("Backspace");
+    assert_eq!(selected(&trial), [9, 10, 11]);
+    trial.keys("Space Space Space Space");
+    assert_eq!(selected(&trial), [9, 10, 11], "with no other granule it goes round again");
+}
+
+#[test]
+fn accepting_takes_the_suggestion_over_as_the_persons_word() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("Space y");
+    // Below 260 K it is cloudy: footprint 9. At 10, of 260 K, the odds are even: no flag.
+    assert_eq!(trial.flagged("cloudy"), [9]);
+    let review = &trial.record().state().review;
+    assert!((9..12).all(|at| review[at] == ReviewState::DecidedByPerson));
+    let decision = trial.record().decisions().last().unwrap();
+    assert!(decision.by_person());
+    assert_eq!(decision.why.as_deref(), Some("cold window (1)"));
+    let Act::Judge { ruling: Ruling::Accepted, rulebook, .. } = &decision.act else {
+        panic!("{decision:?}");
+    };
+    assert!(rulebook.starts_with("lowen ("), "{rulebook}");
+    assert_eq!(trial.bench().doubt.cases.len(), 1);
+    trial.keys("u");
+    assert!(trial.flagged("cloudy").is_empty(), "one undo takes all of it back");
+    assert_eq!(trial.bench().doubt.cases.len(), 2);
+}
+
+#[test]
+fn overruling_withdraws_what_is_suggested_also_later() {
+    let place = place(&["lowen_001.nc"]);
+    screen(&place, "lowen_001.nc");
+    let mut trial = place.review(&["lowen_001.nc"]);
+    assert_eq!(trial.flagged("doubtful"), [9, 10, 11, 25]);
+    trial.keys("Space R");
+    // Only where a flag was suggested; the other two stay in doubt.
+    assert!(!trial.flagged("cloudy").contains(&9));
+    assert_eq!(trial.flagged("doubtful"), [10, 11, 25]);
+    trial.leave();
+    // The tests change their mind in between, and are sure now.
+    let campaign = place.path("campaign/rulebook.toml");
+    let surer = std::fs::read_to_string(&campaign).unwrap().replace("260", "290");
+    std::fs::write(campaign, surer).unwrap();
+    screen(&place, "lowen_001.nc");
+    let again = place.review(&["lowen_001.nc"]);
+    assert!(!again.flagged("cloudy").contains(&9), "a person's word survives a re-screen");
+    assert!(again.flagged("cloudy").contains(&11));
+}
+
+#[test]
+fn where_no_flag_is_suggested_overruling_asks_which_one_it_is() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("Space Space R");
+    assert!(matches!(trial.app.overlay, Overlay::Flags(_)));
+    trial.keys("d");
+    assert_eq!(trial.flagged("dust_or_ash"), [25]);
+    assert_eq!(trial.bench().doubt.cases.len(), 1, "flagged is decided");
+}
+
+#[test]
+fn a_selection_is_accepted_where_no_person_has_decided() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("f s v Down Down End y");
+    assert_eq!(trial.flagged("so2"), [0]);
+    assert_eq!(trial.flagged("cloudy"), (1..=9).collect::<Vec<_>>());
+    assert!(trial.message().contains("1 left as they were"), "{}", trial.message());
+    assert!(trial.bench().doubt.cases.iter().all(|case| case.worst == 25));
+    // A single footprint that is decided already is decided anew.
+    trial.keys("Home g y");
+    assert_eq!(trial.flagged("cloudy"), (0..=9).collect::<Vec<_>>());
+}
+
+#[test]
+fn behind_the_last_case_the_next_granule_in_doubt_is_opened() {
+    let names = ["a.nc", "b.nc", "c.nc"];
+    let place = place(&names);
+    append_byte(&place.path("b.nc"));
+    (0..2).for_each(|_| append_byte(&place.path("c.nc")));
+    let mut trial = place.review(&names);
+    trial.keys("Space y Space y Space");
+    assert!(trial.message().starts_with("nothing is left in doubt here"), "{}", trial.message());
+    assert!(trial.message().ends_with("Space goes on to b.nc"), "{}", trial.message());
+    trial.keys("Space");
+    assert_eq!((trial.granule().as_str(), selected(&trial)), ("b.nc", vec![9, 10, 11]));
+    // Left as they are; in a.nc nothing is left.
+    trial.keys("Space Space Space");
+    assert_eq!(trial.granule(), "c.nc");
+    trial.keys("y Space y Space Space");
+    assert_eq!(trial.granule(), "b.nc");
+    assert!(trial.screen(120, 40).contains("doubt"));
+}
+
+#[test]
+fn the_key_may_be_pressed_before_the_tests_have_run() {
+    let place = place(&["lowen_001.nc"]);
+    let mut trial = place.review_held(&["lowen_001.nc"]);
+    while trial.app.bench().is_none() {
+        for answer in trial.answers_of_next() {
+            trial.event(crate::ui::event::Event::Answer(answer));
+        }
+    }
+    trial.press("Space");
+    assert!(trial.message().contains("as soon as the tests have run"));
+    trial.settle();
+    assert_eq!(selected(&trial), [9, 10, 11]);
+}

@@ -1,0 +1,85 @@
+//! Undo and redo across granules: start state, keys, expected.
+
+use super::append_byte;
+use crate::ui::event::Event;
+use crate::ui::trial::Place;
+
+fn two_granules() -> Place {
+    let place = Place::with(&["a.nc", "b.nc"]);
+    append_byte(&place.path("b.nc"));
+    place
+}
+
+const NAMES: [&str; 2] = ["a.nc", "b.nc"];
+
+#[test]
+fn undo_goes_back_in_time_from_granule_to_granule_and_redo_comes_back() {
+    let place = two_granules();
+    let mut trial = place.review(&NAMES);
+    trial.keys("Right f c n f d p Right f s");
+    assert_eq!((trial.granule().as_str(), trial.flagged("so2")), ("a.nc", vec![2]));
+    trial.keys("u");
+    assert!(trial.flagged("so2").is_empty());
+    trial.keys("u");
+    assert_eq!(trial.granule(), "b.nc", "the decision before was about the other granule");
+    assert!(trial.flagged("dust_or_ash").is_empty());
+    assert!(trial.message().starts_with("b.nc: undone: dust_or_ash"), "{}", trial.message());
+    trial.keys("u");
+    assert_eq!((trial.granule().as_str(), trial.bench().cursor), ("a.nc", 1));
+    assert!(trial.flagged("cloudy").is_empty());
+    trial.keys("u");
+    assert_eq!(trial.message(), "nothing of yours to undo here");
+    trial.keys("r");
+    assert_eq!(trial.flagged("cloudy"), [1]);
+    trial.keys("r");
+    assert_eq!((trial.granule().as_str(), trial.flagged("dust_or_ash")), ("b.nc", vec![0]));
+    trial.keys("r");
+    assert_eq!((trial.granule().as_str(), trial.flagged("so2")), ("a.nc", vec![2]));
+    trial.keys("r");
+    assert_eq!(trial.message(), "nothing to redo");
+}
+
+#[test]
+fn after_a_restart_too() {
+    let place = two_granules();
+    let mut trial = place.review(&NAMES);
+    trial.keys("f c n f d");
+    trial.leave();
+    let mut again = place.review(&NAMES);
+    assert_eq!(again.granule(), "a.nc");
+    again.keys("u");
+    assert_eq!(again.granule(), "b.nc");
+    assert!(again.flagged("dust_or_ash").is_empty());
+    again.keys("u");
+    assert_eq!(again.granule(), "a.nc");
+    assert!(again.flagged("cloudy").is_empty());
+}
+
+#[test]
+fn a_new_decision_about_another_granule_ends_redo() {
+    let place = two_granules();
+    let mut trial = place.review(&NAMES);
+    trial.keys("f c u n f d p r");
+    assert_eq!(trial.message(), "nothing to redo: something else was decided since");
+    assert!(trial.flagged("cloudy").is_empty());
+}
+
+#[test]
+fn a_granule_left_before_its_decisions_were_kept_shows_them_when_one_comes_back() {
+    let place = two_granules();
+    let mut trial = place.review(&NAMES);
+    let folder = format!("campaign/ledgers/a-{}", trial.record().identity().short());
+    let folder = place.path(&folder);
+    std::fs::write(&folder, "in the way").unwrap();
+    trial.keys("f c");
+    assert_eq!(trial.app.pending(), 1);
+    trial.keys("n p");
+    assert_eq!((trial.granule().as_str(), trial.flagged("cloudy")), ("a.nc", vec![0]));
+    assert_eq!(trial.app.pending(), 1, "still on its way, once");
+    std::fs::remove_file(&folder).unwrap();
+    trial.keys("Right f c");
+    trial.event(Event::LedgerMoved);
+    assert_eq!(trial.app.pending(), 0);
+    trial.leave();
+    assert_eq!(place.review(&NAMES).flagged("cloudy"), [0, 1]);
+}

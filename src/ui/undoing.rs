@@ -1,0 +1,82 @@
+//! Undo and redo, in the order of time of the person's decisions, across the granules of the Tray.
+
+use jiff::Timestamp;
+
+use crate::flags::OwnTimes;
+
+use super::app::{App, Direction};
+use super::deciding::{self, words};
+use super::jobs::Job;
+use super::keys::Action;
+use super::moving;
+use super::turning;
+
+/// Takes back the person's latest decision, or the latest undo. Where that was about another
+/// granule, it is opened first, so that one sees what is taken back.
+pub fn undo_or_redo(app: &mut App, action: Action) -> Vec<Job> {
+    let Some(bench) = app.bench() else { return super::looking::no_granule(app) };
+    let (here, entry) = (bench.record.open().map(|record| record.own_times()), bench.entry);
+    let Some(here) = here else { return deciding::not_ready(app) };
+    match elsewhere(app, &here, entry, action) {
+        Elsewhere::Later(entry) => {
+            let jobs = turning::open(app, entry, Direction::Forward);
+            app.then = Some(action);
+            jobs
+        }
+        Elsewhere::Ended => {
+            app.warn("nothing to redo: something else was decided since");
+            Vec::new()
+        }
+        Elsewhere::Nothing => in_this_granule(app, action),
+    }
+}
+
+/// What other granules have to say.
+enum Elsewhere {
+    /// The latest was about this one.
+    Later(usize),
+    /// What was decided about another one ended the redo here.
+    Ended,
+    /// Nothing that concerns this granule.
+    Nothing,
+}
+
+fn elsewhere(app: &App, here: &OwnTimes, entry: usize, action: Action) -> Elsewhere {
+    let moment: fn(&OwnTimes) -> Option<Timestamp> =
+        if action == Action::Undo { |own| own.undo } else { |own| own.redo };
+    let other = app.tray.latest(entry, moment);
+    let latest = other.filter(|(_, at)| moment(here).is_none_or(|here| here < *at));
+    if action == Action::Redo {
+        let redone = latest.map(|(_, at)| at).or(here.redo);
+        let decided = app.tray.latest(entry, |own| own.decided).map(|(_, at)| at);
+        if redone.is_some() && decided.max(here.decided) > redone {
+            return Elsewhere::Ended;
+        }
+    }
+    latest.map_or(Elsewhere::Nothing, |(entry, _)| Elsewhere::Later(entry))
+}
+
+fn in_this_granule(app: &mut App, action: Action) -> Vec<Job> {
+    deciding::change(app, |record, now| match action {
+        Action::Undo => record.undo(now).map(|decision| format!("undone: {}", words(&decision))),
+        _ => record.redo(now).map(|decision| format!("redone: {}", words(&decision))),
+    })
+}
+
+/// The granule that an undo or a redo was about is open: it is done, with the cursor at the place.
+pub fn done_elsewhere(app: &mut App) -> Vec<Job> {
+    let Some(action) = app.then.take() else { return Vec::new() };
+    let mut jobs = in_this_granule(app, action);
+    let Some(bench) = app.bench() else { return jobs };
+    let name = bench.review.granule().name();
+    let place = bench.record.open().and_then(|record| {
+        // The last decision is the undo or the redo itself; it names what it is about.
+        let target = record.meant_by(record.decisions().last()?)?;
+        target.act.footprints()?.iter().next()
+    });
+    app.message.0 = format!("{name}: {}", app.message.0);
+    if let Some(footprint) = place {
+        jobs.extend(moving::go(app, footprint));
+    }
+    jobs
+}
