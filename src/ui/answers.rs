@@ -16,6 +16,7 @@ use super::jobs::{Answer, Job};
 use super::keys::Action;
 use super::looking;
 use super::panes::Arrangement;
+use super::picking;
 use super::place::Place;
 use super::screening;
 use super::shown_layer::ShownLayer;
@@ -47,6 +48,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
             Vec::new()
         }
         Answer::Exported { request, found } => exported(app, request, found),
+        Answer::Selected { request, join, found } => picking::selected(app, request, join, found),
     }
 }
 
@@ -247,7 +249,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
     match found {
         Ok(layer) => {
             if bench.layer.text != bench.wanted {
-                bench.side = None;
+                bench.set_side(None);
                 let new = ShownLayer::waiting(&bench.wanted);
                 let before = std::mem::replace(&mut bench.layer, new);
                 bench.other_layer = Some(before).filter(|layer| !layer.values.is_empty());

@@ -17,7 +17,7 @@ use super::event::Ending;
 use super::keymap::Keymap;
 use super::keys::Action;
 use super::line::History;
-use super::overlay::Overlay;
+use super::overlay::{Deed, Overlay};
 use super::panes::{Arrangement, Pane, ScreenLayout};
 
 /// What the review is given from outside; the same for its whole life.
@@ -99,8 +99,8 @@ pub struct App {
     pub message: (String, Tone),
     /// What was typed on the command line.
     pub history: History,
-    /// The flag that was given last, for giving it once more.
-    pub last_flag: Option<String>,
+    /// What was done last, to be done once more.
+    pub last_deed: Option<Deed>,
     /// Where the panes lie; none on a screen that is too small. Kept by the drawing loop.
     pub layout: Option<ScreenLayout>,
     /// Whether mouse reports are on.
@@ -143,7 +143,7 @@ impl App {
             evidence_scroll: 0,
             message: (String::new(), Tone::Plain),
             history: History::default(),
-            last_flag: None,
+            last_deed: None,
             layout: None,
             mouse: false,
             leaving: false,

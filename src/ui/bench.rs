@@ -17,6 +17,7 @@ use super::overlay::Selection;
 use super::panes::Arrangement;
 use super::panes::field::Placement;
 use super::place::Place;
+use super::selecting::{Selecting, Shape};
 use super::shown_layer::ShownLayer;
 use super::side::Side;
 use super::spectrum_window::SpectrumWindow;
@@ -42,12 +43,8 @@ pub struct Bench {
     pub record: RecordState,
     /// The footprint under the cursor.
     pub cursor: usize,
-    /// The corner at which a box was begun.
-    pub anchor: Option<usize>,
-    /// One side of a value of the layer, while it is selected.
-    pub side: Option<Side>,
-    /// A case of doubt, while it is selected.
-    pub case: Option<Selection>,
+    /// What is selected, or being drawn.
+    pub selecting: Selecting,
     /// What is left in doubt.
     pub doubt: Doubt,
     /// The layer on show.
@@ -126,9 +123,7 @@ impl Bench {
             channels,
             record: RecordState::Reading,
             cursor: 0,
-            anchor: None,
-            side: None,
-            case: None,
+            selecting: Selecting::default(),
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),
             other_layer: None,
@@ -196,26 +191,41 @@ impl Bench {
         true
     }
 
-    /// What the next decision is about: one side of a value, else the box, else the footprint
-    /// under the cursor.
+    /// What the next decision is about: what is selected, joined with what is being drawn, else the
+    /// footprint under the cursor.
     pub fn selection(&self) -> Selection {
-        if let Some(side) = self.side {
-            return self.side_selection(side);
+        match self.shape_selection() {
+            Some(shape) => self.selecting.joined(self.selecting.join, shape),
+            None => self.selecting.kept().cloned().unwrap_or_else(|| self.under_cursor()),
         }
-        if let (Some(case), None) = (&self.case, self.anchor) {
-            return case.clone();
+    }
+
+    /// The footprints of what is being drawn.
+    pub fn shape_selection(&self) -> Option<Selection> {
+        self.selecting.shape.as_ref().map(|shape| shape.selection(self))
+    }
+
+    fn under_cursor(&self) -> Selection {
+        Selection {
+            footprints: FootprintSet::single(self.cursor),
+            words: format!("footprint {}", self.position_words(self.cursor)),
         }
-        match self.anchor {
-            Some(anchor) => {
-                let footprints: FootprintSet =
-                    self.placement.footprints_between(anchor, self.cursor).into_iter().collect();
-                let words = format!("box of {}", footprints.len());
-                Selection { footprints, words }
-            }
-            None => Selection {
-                footprints: FootprintSet::single(self.cursor),
-                words: format!("footprint {}", self.position_words(self.cursor)),
-            },
+    }
+
+    /// The side of a value that is being typed.
+    pub fn side(&self) -> Option<Side> {
+        match self.selecting.shape {
+            Some(Shape::Side(side)) => Some(side),
+            _ => None,
+        }
+    }
+
+    /// Puts a side of a value in the place of what is being drawn, or lets go of it.
+    pub fn set_side(&mut self, side: Option<Side>) {
+        match side {
+            Some(side) => self.selecting.shape = Some(Shape::Side(side)),
+            None if self.side().is_some() => self.selecting.shape = None,
+            None => {}
         }
     }
 
@@ -235,16 +245,6 @@ impl Bench {
         let position = self.review.granule().footprints().position(footprint);
         let parts: Vec<String> = position.iter().map(usize::to_string).collect();
         format!("({})", parts.join(", "))
-    }
-
-    /// Whether a box or a side is selected.
-    pub fn has_selection(&self) -> bool {
-        self.anchor.is_some() || self.side.is_some()
-    }
-
-    /// Lets go of box and side; false if there was neither.
-    pub fn drop_selection(&mut self) -> bool {
-        self.anchor.take().is_some() | self.side.take().is_some() | self.case.take().is_some()
     }
 
     /// The wavenumber of the channel in hand, cm-1.

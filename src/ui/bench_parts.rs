@@ -176,6 +176,8 @@ pub struct Awaited {
     pub noise: u64,
     /// Running the tests.
     pub screen: u64,
+    /// Finding footprints to select.
+    pub select: u64,
     /// Writing an export.
     pub export: u64,
 }

@@ -1,6 +1,7 @@
 //! The `:` command line: what was typed, understood; and what could be typed next.
 
 use super::keys::{self, Action, BINDINGS};
+use super::selecting::{Join, Says, Wanted};
 use super::side::Side;
 use crate::units::wavenumber_from_text;
 
@@ -17,6 +18,8 @@ pub enum Command {
     Flag(String, Option<String>),
     /// Withdraw a flag from the selection, with a reason if there is one.
     Withdraw(String, Option<String>),
+    /// Select footprints.
+    Select(Join, Wanted),
     /// Select all footprints on one side of a value of the layer.
     Side(Side),
     /// Planck curves of these temperatures, K; none takes them off.
@@ -60,6 +63,12 @@ const WORDED: &[Worded] = &[
         words: "NAME [WHY]",
         help: "withdraw a flag from the selection",
         parse: withdraw,
+    },
+    Worded {
+        name: "select",
+        words: "[+-&] WHAT",
+        help: "select: a condition, test NAME for, flag NAME, no flag, all",
+        parse: |words| Wanted::parse(words).map(|(join, wanted)| Command::Select(join, wanted)),
     },
     Worded {
         name: "side",
@@ -211,6 +220,8 @@ pub struct Known {
     pub layers: Vec<String>,
     /// Flag names.
     pub flags: Vec<String>,
+    /// Names of the rulebook's tests.
+    pub tests: Vec<String>,
 }
 
 /// All whole lines that begin with what stands before the cursor, in a fixed order.
@@ -229,16 +240,36 @@ pub fn completions(before_cursor: &str, known: &Known) -> Vec<String> {
             names
         }
         Some((name, words)) => {
-            let candidates = match name {
-                "layer" => &known.layers,
-                "flag" | "withdraw" => &known.flags,
+            let words = words.trim_start();
+            let (lead, candidates) = match name {
+                "layer" => ("", known.layers.clone()),
+                "flag" | "withdraw" => ("", known.flags.clone()),
+                "select" => (sign_of(words), selections(known)),
                 _ => return Vec::new(),
             };
-            let words = words.trim_start();
-            let matching = candidates.iter().filter(|candidate| candidate.starts_with(words));
-            matching.map(|candidate| format!("{name} {candidate}")).collect()
+            let rest = words.get(lead.len()..).unwrap_or_default();
+            let matching = candidates.iter().filter(|candidate| candidate.starts_with(rest));
+            matching.map(|candidate| format!("{name} {lead}{candidate}")).collect()
         }
     }
+}
+
+/// `+ `, `- `, `& ` or nothing in front of what is to be selected.
+fn sign_of(words: &str) -> &str {
+    let end = words.find(|letter: char| !"+-& ".contains(letter)).unwrap_or(words.len());
+    let sign = words.get(..end).unwrap_or_default();
+    if sign.ends_with(' ') { sign } else { "" }
+}
+
+/// What can be selected, as it is typed; the layers as beginnings of conditions.
+fn selections(known: &Known) -> Vec<String> {
+    let tests = known
+        .tests
+        .iter()
+        .flat_map(|test| Says::ALL.map(|says| format!("test {test} {}", says.word())));
+    let flags = known.flags.iter().map(|flag| format!("flag {flag}"));
+    let fixed = ["no flag", "all"].map(str::to_owned);
+    flags.chain(fixed).chain(tests).chain(known.layers.iter().cloned()).collect()
 }
 
 #[cfg(test)]
@@ -306,7 +337,10 @@ mod tests {
         let known = Known {
             layers: vec!["bt(900)".to_owned(), "lat".to_owned()],
             flags: vec!["cloudy".to_owned()],
+            tests: vec!["T01".to_owned()],
         };
+        assert_eq!(completions("select - f", &known), ["select - flag cloudy"]);
+        assert_eq!(completions("select test T01 a", &known), ["select test T01 against"]);
         assert_eq!(completions("und", &known), ["undo"]);
         assert_eq!(completions("lay", &known), ["layer "]);
         assert_eq!(completions("layer ", &known), ["layer bt(900)", "layer lat"]);

@@ -10,19 +10,19 @@ use crate::review::{Record, Refusal};
 
 use super::app::App;
 use super::bench::RecordState;
+use super::colour::Tone;
 use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
-use super::overlay::{FlagOrder, FlagPrompt, Overlay, Selection};
+use super::overlay::{Deed, FlagPrompt, Overlay, Selection};
 use super::undoing;
 
 /// Does what a key of deciding says.
 pub fn decide(app: &mut App, action: Action) -> Vec<Job> {
     match action {
-        Action::Box => begin_box(app),
         Action::Flag => choose_flag(app, true),
         Action::Withdraw => choose_flag(app, false),
-        Action::FlagAgain => flag_again(app),
+        Action::Again => again(app),
         Action::Assess => assess(app),
         Action::SignOff => ask_sign_off(app),
         Action::Undo | Action::Redo => undoing::undo_or_redo(app, action),
@@ -82,18 +82,6 @@ pub fn update_tray(app: &mut App) {
     app.tray.set_standing(entry, standing);
 }
 
-fn begin_box(app: &mut App) -> Vec<Job> {
-    let Some(bench) = app.bench_mut() else { return no_granule(app) };
-    bench.side = None;
-    bench.anchor = match bench.anchor {
-        Some(_) => None,
-        None => Some(bench.cursor),
-    };
-    let begun = bench.anchor.is_some();
-    app.say(if begun { "box: move the cursor" } else { "box let go" });
-    Vec::new()
-}
-
 /// Opens the list of flags for the selection: all flags to give, those that are there to withdraw.
 fn choose_flag(app: &mut App, give: bool) -> Vec<Job> {
     let Some(bench) = app.bench() else { return no_granule(app) };
@@ -113,55 +101,55 @@ fn choose_flag(app: &mut App, give: bool) -> Vec<Job> {
         app.warn(format!("{}: no flag to withdraw", selection.words));
         return Vec::new();
     }
-    let last = app.last_flag.as_ref().and_then(|last| flags.iter().position(|flag| flag == last));
+    let last = match &app.last_deed {
+        Some(Deed::Flag { flag, .. }) => flags.iter().position(|one| one == flag),
+        _ => None,
+    };
     let cursor = last.unwrap_or(0);
     app.overlay = Overlay::Flags(FlagPrompt { give, selection, flags, cursor, with_reason: false });
     Vec::new()
 }
 
-fn flag_again(app: &mut App) -> Vec<Job> {
-    let Some(flag) = app.last_flag.clone() else { return choose_flag(app, true) };
+/// Does the latest decision once more, with its reason, to what is selected now.
+fn again(app: &mut App) -> Vec<Job> {
+    let Some(deed) = app.last_deed.clone() else { return choose_flag(app, true) };
     let Some(bench) = app.bench() else { return no_granule(app) };
     let selection = bench.selection();
-    carry_out(app, FlagOrder { give: true, flag, selection }, None)
+    carry_out(app, deed, selection)
 }
 
-/// Gives or withdraws a flag.
-pub fn carry_out(app: &mut App, order: FlagOrder, why: Option<String>) -> Vec<Job> {
-    let FlagOrder { give, flag, selection } = order;
+/// Does something to a selection; it is let go then, and a key repeats the deed.
+pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
     let Selection { footprints, words } = selection;
-    let name = flag.clone();
-    let jobs = if give {
-        change(app, move |record, now| {
+    let again = deed.clone();
+    let jobs = change(app, move |record, now| match deed {
+        Deed::Flag { give: true, flag, why } => {
             record.flag(&flag, &footprints, why, now).map(|()| format!("{words}: {flag}"))
-        })
-    } else {
-        change(app, move |record, now| {
+        }
+        Deed::Flag { flag, why, .. } => {
             let count = record.withdraw(&flag, &footprints, why, now)?;
             Ok(format!("{words}: {flag} withdrawn from {count}"))
-        })
-    };
-    if give && app.message.1 != super::colour::Tone::Warning {
-        app.last_flag = Some(name);
+        }
+        Deed::Assess => {
+            record.assess(&footprints, None, now).map(|()| format!("{words}: looked at"))
+        }
+        Deed::Comment(text) => record
+            .comment(&footprints, &text, now)
+            .map(|()| format!("{words}: remark written down")),
+    });
+    if app.message.1 != Tone::Warning {
+        app.last_deed = Some(again);
+        if let Some(bench) = app.bench_mut() {
+            bench.selecting.clear();
+        }
     }
-    drop_selection(app);
     jobs
 }
 
 fn assess(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return no_granule(app) };
-    let Selection { footprints, words } = bench.selection();
-    let jobs = change(app, move |record, now| {
-        record.assess(&footprints, None, now).map(|()| format!("{words}: looked at"))
-    });
-    drop_selection(app);
-    jobs
-}
-
-pub fn drop_selection(app: &mut App) {
-    if let Some(bench) = app.bench_mut() {
-        bench.drop_selection();
-    }
+    let selection = bench.selection();
+    carry_out(app, Deed::Assess, selection)
 }
 
 /// Signing off asks what the footprints without flag and assessment are, if there are any.

@@ -14,6 +14,7 @@ use super::keys::Action;
 use super::looking::no_granule;
 use super::moving;
 use super::overlay::Selection;
+use super::selecting::Join;
 use super::turning;
 
 /// The cases of a granule and how far one has come with them.
@@ -121,8 +122,7 @@ fn show_case(app: &mut App, number: usize) -> Vec<Job> {
     let count = case.footprints.len();
     let suggested = bench.tests.screened.as_ref().map(|screened| suggested(screened, &case));
     let words = format!("case of {count}");
-    bench.drop_selection();
-    bench.case = Some(Selection { footprints: case.footprints, words });
+    bench.selecting.take(Join::Anew, Selection { footprints: case.footprints, words });
     let all = bench.doubt.cases.len();
     let jobs = moving::go(app, case.worst);
     let (doubt, suggested) = (case.doubt, suggested.unwrap_or_default());
@@ -235,7 +235,9 @@ fn rule(
         Ok(format!("{words} {what}: {}", outcome(&ruled)))
     });
     if decided {
-        deciding::drop_selection(app);
+        if let Some(bench) = app.bench_mut() {
+            bench.selecting.clear();
+        }
     }
     Vec::new()
 }

@@ -12,6 +12,7 @@ use crate::tray::Standing;
 
 use super::bench::Quality;
 use super::place::Place;
+use super::selecting::{Found, Join};
 use super::trace_look::{NoiseOf, ReferenceFile};
 
 /// Something to be done. Each carries the number of its request, which the answer repeats: an
@@ -127,6 +128,19 @@ pub enum Job {
         review: Arc<Review>,
         /// The footprint.
         footprint: usize,
+    },
+    /// Find the footprints that are to be selected.
+    Select {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// How they go together with what is selected.
+        join: Join,
+        /// The condition that holds there.
+        text: String,
+        /// Ends it early.
+        cancel: Cancel,
     },
     /// Keep a place.
     Keep {
@@ -269,6 +283,15 @@ pub enum Answer {
         footprint: usize,
         /// The noise, band by band.
         found: NoiseOf,
+    },
+    /// The footprints that are to be selected were found.
+    Selected {
+        /// The request.
+        request: u64,
+        /// How they go together with what is selected.
+        join: Join,
+        /// The footprints, and what has to be said about them.
+        found: Found,
     },
     /// The flag mask was written.
     Exported {

@@ -50,7 +50,7 @@ pub enum Action {
     Pin,
     Unpin,
     Flag,
-    FlagAgain,
+    Again,
     Withdraw,
     Assess,
     RunTests,
@@ -59,6 +59,10 @@ pub enum Action {
     Accept,
     Overrule,
     Box,
+    Polygon,
+    Join,
+    Invert,
+    Reselect,
     Side,
     Undo,
     Redo,
@@ -92,6 +96,8 @@ pub enum Group {
     Spectrum,
     /// The layer along lines, detectors or granules.
     Series,
+    /// What a decision is about.
+    Selecting,
     /// Flags and other decisions.
     Deciding,
     /// The program itself.
@@ -100,11 +106,12 @@ pub enum Group {
 
 impl Group {
     /// All headings, in the order of the help.
-    pub const ALL: [Group; 6] = [
+    pub const ALL: [Group; 7] = [
         Group::Moving,
         Group::Layers,
         Group::Spectrum,
         Group::Series,
+        Group::Selecting,
         Group::Deciding,
         Group::Program,
     ];
@@ -115,7 +122,7 @@ impl Group {
             Group::Layers => Some(Pane::Field),
             Group::Spectrum => Some(Pane::Trace),
             Group::Series => Some(Pane::Strip),
-            Group::Moving | Group::Deciding | Group::Program => None,
+            Group::Moving | Group::Selecting | Group::Deciding | Group::Program => None,
         }
     }
 
@@ -126,6 +133,7 @@ impl Group {
             Group::Layers => "Field: layers",
             Group::Spectrum => "Trace: spectra",
             Group::Series => "Strip: drifts and stripes",
+            Group::Selecting => "Selecting",
             Group::Deciding => "Deciding",
             Group::Program => "Program",
         }
@@ -165,7 +173,7 @@ const fn letter(letter: char) -> Key {
     Key::char(letter)
 }
 
-use Group::{Deciding, Layers, Moving, Program, Series, Spectrum};
+use Group::{Deciding, Layers, Moving, Program, Selecting, Series, Spectrum};
 
 /// Every key, in the order of the help.
 pub const BINDINGS: &[Binding] = &[
@@ -223,8 +231,14 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('x')], Action::Pin, "pin", Spectrum, "pin the footprint to compare"),
     row(&[letter('X')], Action::Unpin, "unpin", Spectrum, "take all pins off"),
     row(&[letter('s')], Action::StripAlong, "strip-along", Series, "along lines, positions, …"),
-    row(&[letter('f')], Action::Flag, "choose-flag", Deciding, "flag the footprint or the box"),
-    row(&[letter('F')], Action::FlagAgain, "flag-again", Deciding, "the same flag once more"),
+    row(&[letter('v')], Action::Box, "box", Selecting, "begin a box, or keep it"),
+    row(&[letter('V')], Action::Polygon, "polygon", Selecting, "polygon: a corner here"),
+    row(&[letter('t')], Action::Side, "ask-side", Selecting, "all on one side of a layer value"),
+    row(&[letter('&')], Action::Join, "join", Selecting, "next shape: add, minus, common"),
+    row(&[letter('~')], Action::Invert, "invert", Selecting, "select all others"),
+    row(&[letter('"')], Action::Reselect, "reselect", Selecting, "what was selected before"),
+    row(&[letter('f')], Action::Flag, "choose-flag", Deciding, "flag the footprint or selection"),
+    row(&[letter('F')], Action::Again, "again", Deciding, "the same decision once more"),
     row(&[letter('w')], Action::Withdraw, "choose-withdraw", Deciding, "withdraw a flag"),
     row(&[letter('a')], Action::Assess, "assess", Deciding, "mark as looked at"),
     row(&[letter(' ')], Action::NextCase, "doubt", Deciding, "next most doubtful case"),
@@ -232,8 +246,6 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('y')], Action::Accept, "accept", Deciding, "accept what the tests suggest"),
     row(&[letter('R')], Action::Overrule, "overrule", Deciding, "overrule what they suggest"),
     row(&[letter('T')], Action::RunTests, "screen", Deciding, "run the tests anew"),
-    row(&[letter('v')], Action::Box, "box", Deciding, "start a box, then move"),
-    row(&[letter('t')], Action::Side, "ask-side", Deciding, "all on one side of a layer value"),
     row(&[letter('u')], Action::Undo, "undo", Deciding, "undo the last decision"),
     row(&[letter('r'), Key::control('r')], Action::Redo, "redo", Deciding, "redo"),
     row(&[letter('C')], Action::Comment, "ask-comment", Deciding, "write down a remark"),
@@ -255,7 +267,7 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('m')], Action::Mouse, "mouse", Program, "mouse on or off"),
     row(&[Key::control('l')], Action::Redraw, "redraw", Program, "draw the screen anew"),
     row(&[Key::control('z')], Action::Suspend, "suspend", Program, "back to the shell; fg returns"),
-    row(&[key(Code::Esc)], Action::Cancel, "cancel", Program, "cancel box, prompt or task"),
+    row(&[key(Code::Esc)], Action::Cancel, "cancel", Program, "let go: shape, selection, prompt"),
     row(&[letter('q'), Key::control('c')], Action::Quit, "quit", Program, "leave"),
 ];
 

@@ -7,6 +7,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking;
 use super::panes::Pane;
+use super::picking;
 use super::views;
 
 /// Rows that a page moves where the Field is not on the screen.
@@ -113,13 +114,10 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
             let Some(footprint) = views::footprint_under(app, mouse.column, mouse.row) else {
                 return Vec::new();
             };
-            if mouse.button == Button::Drag
-                && let Some(bench) = app.bench_mut()
-            {
-                bench.anchor.get_or_insert(bench.cursor);
-            }
+            picking::draw_with_mouse(app, mouse.button, footprint);
             go(app, footprint)
         }
+        (Button::Release, Pane::Field) => picking::mouse_up(app),
         (Button::Press, Pane::Tray) => click_in_tray(app, mouse),
         (Button::Press | Button::Drag, Pane::Trace) => {
             app.panes.focus_on(Pane::Trace);

@@ -49,7 +49,14 @@ pub enum Purpose {
     /// One side of a value of the layer.
     Side,
     /// The reason of a flag or a withdrawal.
-    Reason(FlagOrder),
+    Reason {
+        /// Given, or else withdrawn.
+        give: bool,
+        /// The flag's name.
+        flag: String,
+        /// Where.
+        selection: Selection,
+    },
     /// The reason of setting the granule aside.
     Aside,
     /// A remark on a selection.
@@ -65,15 +72,22 @@ pub struct Selection {
     pub words: String,
 }
 
-/// A flag to be given or withdrawn.
+/// What can be done to a selection, and once more to another.
 #[derive(Debug, Clone, PartialEq)]
-pub struct FlagOrder {
-    /// Given, or else withdrawn.
-    pub give: bool,
-    /// The flag's name.
-    pub flag: String,
-    /// Where.
-    pub selection: Selection,
+pub enum Deed {
+    /// A flag is given, or else withdrawn.
+    Flag {
+        /// Given, or else withdrawn.
+        give: bool,
+        /// The flag's name.
+        flag: String,
+        /// A reason, if there is one.
+        why: Option<String>,
+    },
+    /// It counts as looked at.
+    Assess,
+    /// A remark on it is written down.
+    Comment(String),
 }
 
 /// A flag being chosen.

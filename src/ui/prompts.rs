@@ -8,7 +8,7 @@ use super::jobs::Job;
 use super::key::{Code, Key};
 use super::keys::Action;
 use super::looking;
-use super::overlay::{FlagOrder, FlagPrompt, LinePrompt, Overlay, Purpose};
+use super::overlay::{Deed, FlagPrompt, LinePrompt, Overlay, Purpose};
 use super::turning;
 use super::typing;
 use super::update::is_yes;
@@ -102,12 +102,13 @@ fn choose(app: &mut App, key: Key, mut prompt: FlagPrompt) -> Vec<Job> {
         app.overlay = Overlay::Flags(prompt);
         return Vec::new();
     };
-    let order = FlagOrder { give: prompt.give, flag, selection: prompt.selection };
-    if prompt.with_reason {
-        app.overlay = Overlay::Line(LinePrompt::new(Purpose::Reason(order), ""));
+    let FlagPrompt { give, selection, with_reason, .. } = prompt;
+    if with_reason {
+        let purpose = Purpose::Reason { give, flag, selection };
+        app.overlay = Overlay::Line(LinePrompt::new(purpose, ""));
         return Vec::new();
     }
-    deciding::carry_out(app, order, None)
+    deciding::carry_out(app, Deed::Flag { give, flag, why: None }, selection)
 }
 
 fn by_letter(app: &mut App, prompt: &FlagPrompt, letter: char) -> Option<String> {

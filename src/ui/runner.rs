@@ -51,9 +51,8 @@ fn lane_of(job: &Job) -> Lane {
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {
             Lane::Alone
         }
-        Job::Pinned { .. } | Job::Reread { .. } | Job::Keep { .. } | Job::Export { .. } => {
-            Lane::Alone
-        }
+        Job::Pinned { .. } | Job::Reread { .. } | Job::Select { .. } => Lane::Alone,
+        Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
     }
 }
 

@@ -86,7 +86,7 @@ fn envelope(app: &mut App) -> Vec<Job> {
     if !bench.filling.done {
         return still_read(app);
     }
-    let (footprints, words) = match bench.has_selection() {
+    let (footprints, words) = match bench.selecting.is_on() {
         true => {
             let selection = bench.selection();
             (selection.footprints, selection.words)

@@ -1,6 +1,6 @@
 //! A line being typed: editing, completion, and what Enter does with it.
 
-use crate::flags::{FootprintSet, Scope};
+use crate::flags::Scope;
 
 use super::app::App;
 use super::command::{self, Command, Known};
@@ -10,7 +10,8 @@ use super::key::{Code, Key};
 use super::keys::Action;
 use super::line::{Edit, Line};
 use super::looking;
-use super::overlay::{FlagOrder, LinePrompt, Overlay, Purpose};
+use super::overlay::{Deed, LinePrompt, Overlay, Purpose};
+use super::picking;
 use super::side::Side;
 use super::tracing;
 use super::update::act;
@@ -18,13 +19,12 @@ use super::update::act;
 /// Asks for one side of a value, beginning with the value under the cursor.
 pub fn open_side(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return looking::no_granule(app) };
-    let text = match (bench.side, bench.layer.value(bench.cursor)) {
+    let text = match (bench.side(), bench.layer.value(bench.cursor)) {
         (Some(side), _) => format!("{} {}", side.relation.symbol(), side.value),
         (None, Some(value)) => format!("< {value:.2}"),
         (None, None) => "< ".to_owned(),
     };
-    bench.anchor = None;
-    bench.side = Side::parse(&text).ok();
+    bench.set_side(Side::parse(&text).ok());
     app.overlay = Overlay::Line(LinePrompt::offering(Purpose::Side, &text));
     Vec::new()
 }
@@ -44,7 +44,7 @@ pub fn give_up(app: &mut App, prompt: &LinePrompt) -> Vec<Job> {
     if prompt.purpose == Purpose::Side
         && let Some(bench) = app.bench_mut()
     {
-        bench.side = None;
+        bench.set_side(None);
     }
     Vec::new()
 }
@@ -99,7 +99,7 @@ fn changed(app: &mut App) {
     }
     let side = Side::parse(prompt.line.text()).ok();
     if let Some(bench) = app.bench_mut() {
-        bench.side = side;
+        bench.set_side(side);
     }
 }
 
@@ -140,6 +140,9 @@ fn known(app: &App) -> Known {
     Known {
         layers: bench.suggested.clone(),
         flags: kinds.iter().map(|kind| kind.name.clone()).collect(),
+        tests: bench.tests.screened.as_ref().map_or_else(Vec::new, |screened| {
+            screened.rulebook.tests.iter().map(|test| test.name.clone()).collect()
+        }),
     }
 }
 
@@ -172,11 +175,13 @@ fn submit(app: &mut App, mut prompt: LinePrompt) -> Vec<Job> {
             app.overlay = Overlay::Line(prompt);
             Vec::new()
         }
-        Purpose::Reason(order) => deciding::carry_out(app, order, words(&text)),
+        Purpose::Reason { give, flag, selection } => {
+            deciding::carry_out(app, Deed::Flag { give, flag, why: words(&text) }, selection)
+        }
         Purpose::Aside => deciding::change(app, |record, now| {
             record.set_aside(&text, now).map(|()| "set aside".to_owned())
         }),
-        Purpose::Comment(selection) => comment(app, &selection.footprints, &text),
+        Purpose::Comment(selection) => deciding::carry_out(app, Deed::Comment(text), selection),
     }
 }
 
@@ -184,21 +189,15 @@ fn words(text: &str) -> Option<String> {
     (!text.is_empty()).then(|| text.to_owned())
 }
 
-fn comment(app: &mut App, footprints: &FootprintSet, text: &str) -> Vec<Job> {
-    deciding::change(app, |record, now| {
-        record.comment(footprints, text, now).map(|()| "remark written down".to_owned())
-    })
-}
-
 /// Selects one side and goes on to the choice of the flag.
 fn select_side(app: &mut App, side: Side) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return looking::no_granule(app) };
     if bench.side_selection(side).footprints.is_empty() {
-        bench.side = None;
+        bench.set_side(None);
         app.warn("no footprint lies on that side");
         return Vec::new();
     }
-    bench.side = Some(side);
+    bench.set_side(Some(side));
     act(app, Action::Flag)
 }
 
@@ -208,28 +207,23 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
         Command::Action(action) => act(app, action),
         Command::Layer(text) => looking::show_layer(app, &text),
         Command::Go(wavenumber) => looking::go_to_channel(app, wavenumber),
-        Command::Flag(flag, why) => give(app, true, flag, why),
-        Command::Withdraw(flag, why) => give(app, false, flag, why),
+        Command::Flag(flag, why) => to_selection(app, Deed::Flag { give: true, flag, why }),
+        Command::Withdraw(flag, why) => to_selection(app, Deed::Flag { give: false, flag, why }),
         Command::Side(side) => select_side(app, side),
         Command::Planck(kelvins) => tracing::planck(app, kelvins),
         Command::Reference(path) => tracing::reference_file(app, &path),
+        Command::Select(join, wanted) => picking::select(app, join, wanted),
         Command::Range(range) => looking::set_range(app, range),
         Command::Aside(why) => deciding::change(app, |record, now| {
             record.set_aside(&why, now).map(|()| "set aside".to_owned())
         }),
-        Command::Comment(text) => match app.bench() {
-            Some(bench) => {
-                let footprints = bench.selection().footprints;
-                comment(app, &footprints, &text)
-            }
-            None => looking::no_granule(app),
-        },
+        Command::Comment(text) => to_selection(app, Deed::Comment(text)),
         Command::Export(folder) => deciding::export(app, folder),
     }
 }
 
-fn give(app: &mut App, give: bool, flag: String, why: Option<String>) -> Vec<Job> {
+fn to_selection(app: &mut App, deed: Deed) -> Vec<Job> {
     let Some(bench) = app.bench() else { return looking::no_granule(app) };
     let selection = bench.selection();
-    deciding::carry_out(app, FlagOrder { give, flag, selection }, why)
+    deciding::carry_out(app, deed, selection)
 }

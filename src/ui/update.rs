@@ -8,7 +8,8 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, deciding, doubting, looking, moving, prompts, screening, tracing, turning, typing,
+    answers, deciding, doubting, looking, moving, picking, prompts, screening, tracing, turning,
+    typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -81,9 +82,10 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
             looking::trace(app, action)
         }
         A::Pin | A::Unpin => looking::pins(app, action),
-        A::Flag | A::FlagAgain | A::Withdraw | A::Assess | A::Box | A::Undo | A::Redo => {
+        A::Flag | A::Again | A::Withdraw | A::Assess | A::Undo | A::Redo => {
             deciding::decide(app, action)
         }
+        A::Box | A::Polygon | A::Join | A::Invert | A::Reselect => picking::pick(app, action),
         A::SignOff | A::Reopen => deciding::decide(app, action),
         A::RunTests => screening::start(app),
         A::NextCase | A::PreviousCase | A::Accept | A::Overrule => doubting::doubt(app, action),
@@ -151,7 +153,8 @@ fn next_pane(app: &App, forward: bool) -> Pane {
 /// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, running tests, then
 /// the message.
 fn cancel(app: &mut App) -> Vec<Job> {
-    let dropped = app.bench_mut().is_some_and(super::bench::Bench::drop_selection);
+    let dropped =
+        picking::give_up(app) || app.bench_mut().is_some_and(|bench| bench.selecting.let_go());
     if app.leaving {
         app.leaving = false;
         app.say("stays");

@@ -15,6 +15,7 @@ use super::app::Outside;
 use super::bench::Quality;
 use super::jobs::{Answer, Job, TraceAsk, TraceFound};
 use super::place;
+use super::selecting::where_holds;
 use super::trace_look::ReferenceFile;
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
@@ -77,6 +78,10 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = bands.map(noise).collect();
             send(Answer::Noise { request: *request, footprint: *footprint, found });
         }
+        Job::Select { request, review, join, text, cancel } => {
+            let found = where_holds(review, text, cancel);
+            send(Answer::Selected { request: *request, join: *join, found });
+        }
         Job::Keep { identity, place } => {
             place::keep(&outside.campaign, identity, &outside.author.person, place);
         }
@@ -104,6 +109,9 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Spectrum { request, .. } => Answer::Spectrum { request: *request, found: Err(why()) },
         Job::Pinned { request, .. } => Answer::Pinned { request: *request, found: Vec::new() },
         Job::Trace { request, .. } => Answer::Trace { request: *request, found: Err(why()) },
+        Job::Select { request, join, .. } => {
+            Answer::Selected { request: *request, join: *join, found: Err(why()) }
+        }
         Job::Reread { .. } | Job::Keep { .. } | Job::Noise { .. } => return None,
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })

@@ -9,6 +9,7 @@ use crate::ui::bench::Bench;
 use crate::ui::colour::Scale;
 use crate::ui::panes::Pane;
 use crate::ui::panes::field::{self, FieldView, FlagSign, Pin, Placement};
+use crate::ui::selecting::Shape;
 
 /// Draws the Field.
 pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
@@ -62,7 +63,8 @@ impl FieldParts {
             selected: &self.selected,
             scale: bench.map_or_else(Scale::default, |bench| bench.layer.scale),
             cursor: bench.filter(|bench| bench.marks).map(|bench| bench.cursor),
-            corners: bench.and_then(|bench| Some((bench.anchor?, bench.cursor))),
+            corners: bench.and_then(corners),
+            polygon: bench.map_or(&[], polygon),
             pins: &self.pins,
             zoom: bench.map_or(0, |bench| bench.field_zoom),
             focused: app.focus() == Pane::Field,
@@ -132,8 +134,22 @@ fn pending(bench: &Bench) -> Vec<bool> {
     pending
 }
 
+fn corners(bench: &Bench) -> Option<(usize, usize)> {
+    match bench.selecting.shape {
+        Some(Shape::Box(anchor)) => Some((anchor, bench.cursor)),
+        _ => None,
+    }
+}
+
+fn polygon(bench: &Bench) -> &[usize] {
+    match &bench.selecting.shape {
+        Some(Shape::Polygon(corners)) => corners,
+        _ => &[],
+    }
+}
+
 fn selected(bench: &Bench) -> Vec<bool> {
-    if !bench.marks || bench.side.is_none() && bench.anchor.is_none() && bench.case.is_none() {
+    if !bench.marks || !bench.selecting.is_on() {
         return Vec::new();
     }
     let mut selected = vec![false; bench.footprints()];

@@ -60,8 +60,8 @@ fn draw_line(
             Some(bench) => format!("{} ", bench.layer.text),
             None => String::new(),
         },
-        Purpose::Reason(order) => {
-            let title = format!("Why {} at {}?", order.flag, order.selection.words);
+        Purpose::Reason { flag, selection, .. } => {
+            let title = format!("Why {flag} at {}?", selection.words);
             return draw_text(
                 app,
                 &title,

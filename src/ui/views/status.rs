@@ -6,6 +6,7 @@ use crate::ui::colour::Tone;
 use crate::ui::keys::Action;
 use crate::ui::overlay::{LinePrompt, Overlay, Purpose};
 use crate::ui::panes::Pane;
+use crate::ui::selecting::Join;
 
 /// Short facts at the right of the status line, the most important first.
 pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
@@ -16,6 +17,9 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         (pending, None) => facts.push((format!("{pending} pending"), Tone::Warning)),
     }
     let Some(bench) = app.bench() else { return facts };
+    if bench.selecting.is_on() {
+        facts.push((selected(bench), Tone::Accent));
+    }
     if bench.awaited.screen != 0 {
         facts.push(("tests running, Esc ends them".to_owned(), Tone::Faint));
     }
@@ -43,6 +47,21 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
     facts
 }
 
+/// How many footprints the next decision is about, and how what is being drawn changes that.
+fn selected(bench: &Bench) -> String {
+    let count = bench.selection().footprints.len();
+    match (bench.selecting.kept(), bench.shape_selection()) {
+        (Some(kept), Some(shape)) => {
+            let (kept, shape) = (kept.footprints.len(), shape.footprints.len());
+            match bench.selecting.join {
+                Join::Anew => format!("{count} selected"),
+                join => format!("{kept} {} {shape}: {count} selected", join.sign()),
+            }
+        }
+        _ => format!("{count} selected"),
+    }
+}
+
 fn filling(bench: &Bench) -> Option<(String, Tone)> {
     if bench.filling.problem.is_some() {
         return Some(("spectra incomplete".to_owned(), Tone::Bad));
@@ -53,14 +72,18 @@ fn filling(bench: &Bench) -> Option<(String, Tone)> {
 
 /// Keys worth knowing at this moment: (key, what it does).
 pub fn hints(app: &App) -> Vec<(String, &'static str)> {
-    let selecting = app.bench().is_some_and(|bench| {
-        bench.anchor.is_some() || bench.side.is_some() || bench.case.is_some()
-    });
+    let selecting = app.bench().is_some_and(|bench| bench.selecting.is_on());
     let actions: &[(Action, &'static str)] = if selecting {
         &[
             (Action::Flag, "flag"),
             (Action::Withdraw, "withdraw"),
             (Action::Assess, "looked at"),
+            (Action::Again, "again"),
+            (Action::Comment, "remark"),
+            (Action::Box, "box"),
+            (Action::Polygon, "polygon"),
+            (Action::Join, "add, minus"),
+            (Action::Invert, "invert"),
             (Action::Cancel, "let go"),
         ]
     } else if app.focus() == Pane::Tray {
@@ -96,7 +119,7 @@ pub fn side_preview(app: &App) -> Option<String> {
         return None;
     };
     let bench = app.bench()?;
-    Some(match bench.side {
+    Some(match bench.side() {
         Some(side) => {
             let count = bench.side_selection(side).footprints.len();
             let all = bench.footprints();

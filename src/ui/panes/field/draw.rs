@@ -84,6 +84,7 @@ mod tests {
             scale: Scale { palette: Palette::Viridis, low: 200.0, high: 300.0 },
             cursor: None,
             corners: None,
+            polygon: &[],
             pins: &[],
             zoom: 0,
             focused: false,
@@ -233,6 +234,17 @@ mod tests {
             screen.lines()[1..7],
             [" /", " / +----+", " / |    |", " / +----+", " /", " /          a"]
         );
+    }
+
+    #[test]
+    fn corners_of_a_polygon_are_marked() {
+        let placement = Placement::unfold(&[6, 12], None);
+        let values = ramp(72);
+        let mut view = view(&placement, &values);
+        view.polygon = &[0, 38];
+        let mut screen = Screen::new(14, 8);
+        draw(&view, &Theme { ascii: true, ..THEME }, screen.area(), &mut screen.buffer);
+        assert_eq!(screen.lines()[1..5], [" o", "", "", "   o"]);
     }
 
     #[test]

@@ -19,6 +19,11 @@ pub(super) fn draw(
     if let Some((one, other)) = view.corners {
         draw_box(view, geometry, (one, other), theme, buffer);
     }
+    for corner in view.polygon {
+        if let Some(cell) = geometry.cell_of(view.placement, *corner) {
+            put_mark(cell, if theme.ascii { 'o' } else { '◇' }, theme, buffer);
+        }
+    }
     for pin in view.pins {
         if let Some(cell) = geometry.cell_of(view.placement, pin.footprint) {
             put_mark(cell, pin.letter, theme, buffer);

@@ -32,6 +32,8 @@ pub struct FieldView<'a> {
     pub cursor: Option<usize>,
     /// Opposite corners of a box being drawn, as footprints.
     pub corners: Option<(usize, usize)>,
+    /// The corners of a polygon being drawn but for the last, which is the cursor.
+    pub polygon: &'a [usize],
     /// Pinned footprints with their letters.
     pub pins: &'a [Pin],
     /// 0 shows the whole map; each step shows half the width and height, around the cursor.

@@ -1,0 +1,14 @@
+//! The footprints that the next decision is about: what is selected, what is being drawn, and how
+//! the two go together.
+
+mod condition;
+mod polygon;
+mod selecting;
+mod shape;
+mod wanted;
+
+pub use condition::{Found, where_holds};
+pub use polygon::is_inside;
+pub use selecting::{Join, Selecting};
+pub use shape::Shape;
+pub use wanted::{Says, Wanted};
