@@ -60,20 +60,20 @@ fn any_keys_in_any_order() {
 fn settings_change_the_keys_everywhere() {
     let place = Place::with(&["lowen_001.nc"]);
     std::fs::create_dir_all(place.path("campaign")).unwrap();
-    let settings = "[keys]\nbox = 'B'\nundo = 'B'\nassess = 'F9'\n";
+    let settings = "[keys]\nbox = 'F8'\nundo = 'F8'\nassess = 'F9'\n";
     std::fs::write(place.path("campaign/campaign.toml"), settings).unwrap();
     let mut trial = place.review(&["lowen_001.nc"]);
     assert_eq!(
         trial.message(),
-        "campaign.toml, line 3: B is box already (campaign.toml, line 2); undo does not get it"
+        "campaign.toml, line 3: F8 is box already (campaign.toml, line 2); undo does not get it"
     );
-    trial.keys("B Down F9");
+    trial.keys("F8 Down F9");
     assert_eq!(trial.record().counts().not_assessed, 28);
     trial.keys("u");
     assert_eq!(trial.record().counts().not_assessed, 30, "the key that clashed stays as it was");
     trial.keys("v");
     assert_eq!(trial.message(), "no key v; ? shows the keys");
-    assert!(trial.screen(80, 24).contains("B box"), "the hints");
+    assert!(trial.screen(80, 24).contains("F8 box"), "the hints");
     trial.keys("?");
     assert!(trial.screen(80, 90).contains("F9"), "the help");
 }
