@@ -6,7 +6,7 @@ use std::ops::Range;
 use super::derived::derive;
 use super::indices::INDICES;
 use super::kept::Kept;
-use super::names::{NameError, Names, Values};
+use super::names::{Judgements, NameError, Names, Values};
 use super::neighbours::Neighbours;
 use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, Judgement};
 use super::unit::LayerUnit;
@@ -25,6 +25,7 @@ pub struct GranuleNames<'g> {
     cube: &'g Cube,
     whole: Option<WholeGranule<'g>>,
     definitions: Option<&'g BTreeMap<String, Expression>>,
+    judgements: Option<&'g dyn Judgements>,
     kept: Option<&'g Kept>,
     own: Kept,
 }
@@ -32,12 +33,26 @@ pub struct GranuleNames<'g> {
 impl<'g> GranuleNames<'g> {
     /// The names of a granule over its cube.
     pub fn new(granule: &'g Granule, cube: &'g Cube) -> Self {
-        Self { granule, cube, whole: None, definitions: None, kept: None, own: Kept::default() }
+        Self {
+            granule,
+            cube,
+            whole: None,
+            definitions: None,
+            judgements: None,
+            kept: None,
+            own: Kept::default(),
+        }
     }
 
     /// With names that stand for expressions.
     pub fn with_definitions(mut self, definitions: &'g BTreeMap<String, Expression>) -> Self {
         self.definitions = Some(definitions);
+        self
+    }
+
+    /// With what screening tests said.
+    pub fn with_judgements(mut self, judgements: Option<&'g dyn Judgements>) -> Self {
+        self.judgements = judgements;
         self
     }
 
@@ -217,8 +232,11 @@ impl Names for GranuleNames<'_> {
         self.definitions?.get(name)
     }
 
-    fn judged(&self, judgement: Judgement, _of: Option<&str>) -> Result<Values, NameError> {
-        Err(NameError::NotJudged(judgement.word()))
+    fn judged(&self, judgement: Judgement, of: Option<&str>) -> Result<Values, NameError> {
+        match self.judgements {
+            Some(judgements) => judgements.judged(judgement, of),
+            None => Err(NameError::NotJudged(judgement.word())),
+        }
     }
 
     fn cluster(&self) -> usize {

@@ -23,7 +23,7 @@ pub use first_look::{FIRST_LOOK, suggestions};
 pub use granule_names::GranuleNames;
 pub use indices::INDICES;
 pub use kept::Kept;
-pub use names::{NameError, Names, Values};
+pub use names::{Judgements, NameError, Names, Values};
 pub use neighbours::Neighbours;
 pub use syntax::{
     DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Judgement, Mistake,

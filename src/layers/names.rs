@@ -75,6 +75,15 @@ fn nearest_words(nearest: Option<f64>) -> String {
     }
 }
 
+/// Lends what screening tests say.
+pub trait Judgements: Sync {
+    /// What they say about each footprint; `of` is a flag, or a test of `margin`.
+    ///
+    /// # Errors
+    /// There is no such flag or test.
+    fn judged(&self, judgement: Judgement, of: Option<&str>) -> Result<Values, NameError>;
+}
+
 /// What an expression can ask of a granule, or of anything else that has footprints. All numbers
 /// are f64 with NaN for missing; footprints are numbered in row-major order.
 pub trait Names: Sync {

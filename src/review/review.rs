@@ -1,13 +1,13 @@
 //! A granule on the table, to look at: layers and spectra while it is still being read.
 
 use std::path::Path;
-use std::sync::Arc;
+use std::sync::{Arc, Mutex, PoisonError};
 
 use crate::export::granule_identity;
 use crate::flags::GranuleIdentity;
 use crate::granule::{Channel, Cube, Granule, GranuleError, Opening};
 use crate::layers::{
-    Expression, GranuleNames, Kept, Layer, Mistake, channels_needed, evaluate_all,
+    Expression, GranuleNames, Judgements, Kept, Layer, Mistake, channels_needed, evaluate_all,
 };
 use crate::screening::{Rulebook, Screened, screen};
 use crate::system::Cancel;
@@ -18,6 +18,7 @@ pub struct Review {
     granule: Granule,
     cube: Arc<Cube>,
     kept: Kept,
+    tested: Mutex<Option<Arc<Screened>>>,
 }
 
 impl Review {
@@ -32,7 +33,7 @@ impl Review {
     /// Puts an open granule on the table.
     pub fn of(granule: Granule) -> Review {
         let cube = granule.cube();
-        Review { granule, cube, kept: Kept::default() }
+        Review { granule, cube, kept: Kept::default(), tested: Mutex::default() }
     }
 
     /// The granule.
@@ -69,6 +70,11 @@ impl Review {
         screen(rulebook, &self.names())
     }
 
+    /// Lends what tests said to the layers from now on: `doubt`, `margin("…")` and their like.
+    pub fn lend(&self, screened: Arc<Screened>) {
+        *self.tested.lock().unwrap_or_else(PoisonError::into_inner) = Some(screened);
+    }
+
     /// Evaluates an expression over what has been read so far; over all of a granule that does not
     /// fit into memory.
     ///
@@ -89,9 +95,12 @@ impl Review {
             })
             .collect();
         let good: Vec<&Expression> = parsed.iter().filter_map(|one| one.as_ref().ok()).collect();
+        let tested = self.tested.lock().unwrap_or_else(PoisonError::into_inner).clone();
+        let judgements = tested.as_deref().map(|screened| screened as &dyn Judgements);
+        let names = self.names().with_judgements(judgements);
         let layers = match self.cube.is_full() {
-            false => evaluate_all(&good, &self.names()),
-            true => match self.names().lend_all(cancel, |names| evaluate_all(&good, names)) {
+            false => evaluate_all(&good, &names),
+            true => match names.lend_all(cancel, |names| evaluate_all(&good, names)) {
                 Ok(layers) => layers,
                 Err(error) => return texts.iter().map(|_| Err(error.to_string())).collect(),
             },

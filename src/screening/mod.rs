@@ -13,6 +13,7 @@ mod catalogue_used;
 mod check_names;
 mod combine;
 mod evidence;
+mod judgements;
 mod lent_names;
 mod mistakes;
 mod read_rulebook;

@@ -6,6 +6,7 @@ use std::sync::Arc;
 use crate::flags::FootprintSet;
 use crate::granule::Channel;
 use crate::review::{Record, Review, Spectrum};
+use crate::screening::Screened;
 use crate::tray::Standing;
 
 pub use super::bench_parts::{
@@ -149,6 +150,18 @@ impl Bench {
             asked_early: false,
             touched: false,
             review,
+        }
+    }
+
+    /// Offers what the tests say among the layers that keys step through: the doubt, and how
+    /// probable each flag is.
+    pub fn suggest_judgements(&mut self, screened: &Screened) {
+        let flags = screened.rulebook.flags();
+        let probable = flags.iter().map(|flag| format!("probability(\"{flag}\")"));
+        for layer in std::iter::once("doubt".to_owned()).chain(probable) {
+            if !self.suggested.contains(&layer) {
+                self.suggested.push(layer);
+            }
         }
     }
 

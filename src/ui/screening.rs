@@ -35,12 +35,16 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
     bench.awaited.screen = 0;
     match found {
         Ok(screened) => {
+            bench.suggest_judgements(&screened);
             bench.tests.screened = Some(screened);
             bench.tests.problem = None;
             bench.compare_tests();
             bench.find_cases();
             deciding::update_tray(app);
-            return doubting::tests_have_run(app);
+            // A layer may be made of what the tests say.
+            let mut jobs = looking::refresh_layer(app);
+            jobs.extend(doubting::tests_have_run(app));
+            return jobs;
         }
         Err(why) => {
             bench.tests.screened = None;

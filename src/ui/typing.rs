@@ -137,8 +137,10 @@ fn known(app: &App) -> Known {
     let Some(bench) = app.bench() else { return Known::default() };
     let vocabulary = &app.outside.campaign.settings().vocabulary;
     let kinds = vocabulary.of_scope(Scope::Footprint);
+    let tests = bench.tests.screened.iter().flat_map(|screened| &screened.rulebook.tests);
+    let margins = tests.map(|test| format!("margin(\"{}\")", test.name));
     Known {
-        layers: bench.suggested.clone(),
+        layers: bench.suggested.iter().cloned().chain(margins).collect(),
         flags: kinds.iter().map(|kind| kind.name.clone()).collect(),
         tests: bench.tests.screened.as_ref().map_or_else(Vec::new, |screened| {
             screened.rulebook.tests.iter().map(|test| test.name.clone()).collect()

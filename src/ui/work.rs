@@ -56,7 +56,11 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         Job::Screen { request, review, cancel } => {
             let found = screen(review, cancel, outside).transpose();
             if let Some(found) = found {
-                send(Answer::Screened { request: *request, found: found.map(Arc::new) });
+                let found = found.map(Arc::new);
+                if let Ok(screened) = &found {
+                    review.lend(Arc::clone(screened));
+                }
+                send(Answer::Screened { request: *request, found });
             }
         }
         Job::Spectrum { request, review, footprint } => {

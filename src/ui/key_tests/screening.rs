@@ -96,6 +96,28 @@ fn opening_a_granule_runs_the_campaigns_rulebook() {
 }
 
 #[test]
+fn what_the_tests_say_is_a_layer_too() {
+    let (_place, mut trial) = one_granule();
+    for (layer, footprint, value) in [
+        ("doubt", 10, 1.0),
+        ("margin(\"cold window\")", 8, 0.5),
+        ("flag(\"cloudy\")", 9, 1.0),
+        ("probability(\"cloudy\") > 0.5 and doubt > 0.5", 8, 0.0),
+    ] {
+        trial.types(&format!(":layer {layer}")).keys("Enter");
+        let found = trial.bench().layer.values[footprint];
+        assert!((found - value).abs() < 1e-6, "{layer}: {found}, {}", trial.message());
+    }
+    trial.types(":layer margin(\"cold\")").keys("Enter");
+    assert!(
+        trial.message().contains("cold window"),
+        "the near name is offered: {}",
+        trial.message()
+    );
+    assert!(trial.bench().suggested.contains(&"doubt".to_owned()));
+}
+
+#[test]
 fn what_was_screened_before_agrees_with_what_is_shown() {
     let place = place(&["lowen_001.nc"]);
     screen(&place, "lowen_001.nc");
