@@ -136,7 +136,11 @@ fn write_text(rulebook: &Rulebook, out: &mut dyn Write) -> std::io::Result<()> {
     writeln!(out, "assessed where tested: {}", rulebook.assess.join(", "))?;
     writeln!(out, "\nSurfaces, the first that holds:")?;
     for surface in &rulebook.surfaces {
-        let place = surface.place.as_ref().map_or("everywhere else", |place| place.text());
+        let places: Vec<&str> = surface.places.iter().map(|place| place.text()).collect();
+        let place = match places.is_empty() {
+            true => "everywhere else".to_owned(),
+            false => places.join("; where the file lacks something: "),
+        };
         writeln!(out, "  {}: {place}", surface.name)?;
         paragraph("    ", &surface.note, out)?;
     }
@@ -222,7 +226,7 @@ fn as_json(rulebook: &Rulebook) -> Value {
     let surface = |surface: &Surface| {
         json!({
             "name": surface.name,
-            "where": surface.place.as_ref().map(|place| place.text()),
+            "where": surface.places.iter().map(|place| place.text()).collect::<Vec<_>>(),
             "note": surface.note,
             "start": surface.start,
             "weights": surface.weights,

@@ -15,7 +15,7 @@ pub fn catalogue_used(
     let own = |name: &str| definitions.iter().any(|(_, definition)| definition.name == name);
     let mut open: Vec<&Expression> =
         definitions.iter().map(|(_, definition)| &definition.expression).collect();
-    open.extend(surfaces.iter().filter_map(|(_, surface)| surface.place.as_ref()));
+    open.extend(surfaces.iter().flat_map(|(_, surface)| &surface.places));
     open.extend(tests.iter().flat_map(|(_, test)| test.expressions()));
     let mut used: Vec<Definition> = Vec::new();
     while let Some(expression) = open.pop() {

@@ -88,7 +88,7 @@ fn expressions<'p>(plain: &'p Plain<'p>) -> Vec<(Range<usize>, String, &'p Expre
     }
     for (span, surface) in plain.surfaces {
         let key = format!("surfaces \"{}\", where", surface.name);
-        all.extend(surface.place.iter().map(|place| (span.clone(), key.clone(), place)));
+        all.extend(surface.places.iter().map(|place| (span.clone(), key.clone(), place)));
     }
     for (span, test) in plain.tests {
         let mut add = |key: &str, expression: &'p Expression| {

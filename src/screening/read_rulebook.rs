@@ -233,7 +233,7 @@ fn family(table: &mut TableReader<'_, '_>) -> Option<Family> {
 fn anywhere() -> Surface {
     Surface {
         name: "anywhere".to_owned(),
-        place: None,
+        places: Vec::new(),
         note: String::new(),
         start: BTreeMap::new(),
         weights: BTreeMap::new(),
@@ -242,7 +242,7 @@ fn anywhere() -> Surface {
 
 fn surface(table: &mut TableReader<'_, '_>) -> Option<Surface> {
     let name = table.needed_text("name");
-    let place = table.expression("where");
+    let places = table.expressions("where");
     let note = table.text("note").unwrap_or_default();
     let start = table.numbers_by_name("start").into_iter().map(|(name, _, n)| (name, n)).collect();
     let mut weights = BTreeMap::new();
@@ -265,7 +265,7 @@ fn surface(table: &mut TableReader<'_, '_>) -> Option<Surface> {
             }
         }
     }
-    Some(Surface { name: name?, place, note, start, weights })
+    Some(Surface { name: name?, places, note, start, weights })
 }
 
 fn test(table: &mut TableReader<'_, '_>, surfaces: &[(Range<usize>, Surface)]) -> Option<Test> {

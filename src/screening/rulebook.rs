@@ -67,8 +67,8 @@ pub struct Family {
 pub struct Surface {
     /// Its name.
     pub name: String,
-    /// Where it is; everywhere else where this is `None`.
-    pub place: Option<Expression>,
+    /// Where it is: the first of these that the file allows; everywhere else where there is none.
+    pub places: Vec<Expression>,
     /// What a user should know.
     pub note: String,
     /// Log-odds to start from, by flag; 0 where none is given.

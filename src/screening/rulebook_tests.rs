@@ -42,7 +42,7 @@ fn the_built_in_rulebook_has_no_mistakes() {
     let rulebook = builtin().unwrap_or_else(|error| panic!("{error}"));
     let surfaces: Vec<&str> = rulebook.surfaces.iter().map(|one| one.name.as_str()).collect();
     assert_eq!(surfaces, ["snow", "sea", "land", "unknown"]);
-    assert!(rulebook.surfaces[3].place.is_none(), "the last surface takes what is left");
+    assert!(rulebook.surfaces[3].places.is_empty(), "the last surface takes what is left");
     for test in &rulebook.tests {
         assert!(test.ways.iter().all(|way| !way.source.is_empty()), "{}", test.name);
     }

@@ -42,7 +42,7 @@ pub fn expressions(rulebook: &Rulebook) -> Vec<&Expression> {
             all.push(expression);
         }
     };
-    rulebook.surfaces.iter().filter_map(|surface| surface.place.as_ref()).for_each(&mut add);
+    rulebook.surfaces.iter().flat_map(|surface| &surface.places).for_each(&mut add);
     rulebook.tests.iter().flat_map(Test::expressions).for_each(&mut add);
     all
 }
@@ -64,8 +64,11 @@ fn surfaces(rulebook: &Rulebook, layers: &Layers<'_>, footprints: usize) -> Vec<
         .surfaces
         .iter()
         .map(|surface| {
-            let place = surface.place.as_ref()?;
-            Some(found(layers, place).map_or(&[][..], |layer| &layer.values))
+            if surface.places.is_empty() {
+                return None;
+            }
+            let allowed = surface.places.iter().find_map(|place| found(layers, place).ok());
+            Some(allowed.map_or(&[][..], |layer| &layer.values))
         })
         .collect();
     let holds_at = |holds: &Option<&[f64]>, footprint: usize| match holds {

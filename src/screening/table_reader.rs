@@ -149,6 +149,14 @@ impl<'n, 'd> TableReader<'n, 'd> {
         self.expression_of(key, value)
     }
 
+    /// An expression, or a list of them.
+    pub fn expressions(&mut self, key: &'static str) -> Vec<Expression> {
+        let Some(value) = self.value(key) else { return Vec::new() };
+        let list = value.get_ref().as_array().map(|list| list.iter().collect());
+        let list: Vec<Value<'d>> = list.unwrap_or_else(|| vec![value]);
+        list.into_iter().filter_map(|one| self.expression_of(key, one)).collect()
+    }
+
     /// An expression that must be there.
     pub fn needed_expression(&mut self, key: &'static str) -> Option<Expression> {
         let value = self.value(key);
