@@ -1,6 +1,7 @@
 //! `radsieve describe`: what was understood of a file.
 
 mod description;
+mod quality_map;
 mod words;
 
 use std::io::Write;
@@ -22,6 +23,9 @@ pub struct Arguments {
     /// Print what was found as a layout file, to be edited and given back by --layout
     #[arg(long, conflicts_with = "json")]
     as_layout: bool,
+    /// Print a starting map of the producer's quality, for the campaign's campaign.toml
+    #[arg(long, conflicts_with_all = ["json", "as_layout"])]
+    as_quality_map: bool,
     #[command(flatten)]
     reading: Reading,
 }
@@ -32,6 +36,10 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let mut out = std::io::stdout().lock();
     if arguments.as_layout {
         out.write_all(layout_text(&granule).as_bytes())?;
+        return Ok(Exit::Done);
+    }
+    if arguments.as_quality_map {
+        out.write_all(quality_map::quality_map_text(&granule).as_bytes())?;
         return Ok(Exit::Done);
     }
     let description = Description::of(&granule)?;

@@ -134,7 +134,8 @@ fn read_layout(path: &Path) -> anyhow::Result<LayoutFile> {
     let shown = clean_text(&path.to_string_lossy());
     let text = std::fs::read_to_string(path)
         .with_context(|| format!("cannot read the layout file {shown}"))?;
-    LayoutFile::parse(&text)
+    let name = path.file_name().unwrap_or_default().to_string_lossy();
+    LayoutFile::parse_named(&name, &text)
         .map_err(|reason| UsageError(format!("layout file {shown}: {reason}")).into())
 }
 

@@ -13,9 +13,9 @@ use super::footprint_at::{footprint, indices};
 use super::inputs::{Inputs, Reading};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
-use crate::flags::{Author, Campaign, CampaignError};
+use crate::flags::{Author, Campaign, CampaignError, QualityMap};
 use crate::granule::Opening;
-use crate::review::{Record, Recorded, Review, rulebook_of};
+use crate::review::{Producer, Record, Recorded, Review, rulebook_of};
 use crate::screening::{Evidence, Rulebook, Screened, Summary, TestEvidence, Verdict};
 use crate::system::{Cancel, clean_text};
 
@@ -64,6 +64,7 @@ struct Desk {
 /// What came of a file.
 struct Outcome {
     screened: Screened,
+    producer: Producer,
     recorded: Option<Recorded>,
 }
 
@@ -71,19 +72,20 @@ struct Outcome {
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let files = arguments.inputs.files()?;
     let rulebook = rulebook(&arguments)?;
+    let quality = quality(&arguments)?;
     let opening = arguments.reading.opening()?;
     if let Some(position) = &arguments.explain {
         let position = indices("--explain", position)?;
         let [file] = &files[..] else {
             return Err(UsageError("--explain takes one file".into()).into());
         };
-        return explain(&opening, file, &rulebook, &position, arguments.json);
+        return explain(&opening, file, &rulebook, &quality, &position, arguments.json);
     }
     let desk = if arguments.dry_run { None } else { Some(desk(&arguments, &rulebook)?) };
     let mut failed = 0;
     let mut entries = Vec::new();
     for file in &files {
-        let outcome = one_file(&opening, file, &rulebook, desk.as_ref());
+        let outcome = one_file(&opening, file, &rulebook, &quality, desk.as_ref());
         failed += usize::from(outcome.is_err());
         tell(file, &outcome, arguments.json)?;
         if arguments.json {
@@ -105,6 +107,15 @@ fn rulebook(arguments: &Arguments) -> anyhow::Result<Rulebook> {
     match Campaign::open(&arguments.campaign) {
         Ok(campaign) => Ok(rulebook_of(&campaign).map_err(|error| UsageError(error.to_string()))?),
         Err(CampaignError::Missing(_)) => rulebook_or_builtin(None),
+        Err(error) => Err(error.into()),
+    }
+}
+
+/// What the campaign makes of the producer's word on quality.
+fn quality(arguments: &Arguments) -> anyhow::Result<QualityMap> {
+    match Campaign::open(&arguments.campaign) {
+        Ok(campaign) => Ok(campaign.settings().quality.clone()),
+        Err(CampaignError::Missing(_)) => Ok(QualityMap::default()),
         Err(error) => Err(error.into()),
     }
 }
@@ -135,15 +146,16 @@ fn one_file(
     opening: &Opening,
     file: &Path,
     rulebook: &Rulebook,
+    quality: &QualityMap,
     desk: Option<&Desk>,
 ) -> anyhow::Result<Outcome> {
-    let review = Review::open(opening, file)?;
+    let review = Review::open(opening, file)?.heeding(quality);
     let screened = review.screen(rulebook, &Cancel::new())?;
     let recorded = match desk {
         None => None,
         Some(desk) => Some(record(desk, &review, &screened)?),
     };
-    Ok(Outcome { screened, recorded })
+    Ok(Outcome { screened, producer: review.producer().clone(), recorded })
 }
 
 fn record(desk: &Desk, review: &Review, screened: &Screened) -> anyhow::Result<Recorded> {
@@ -153,6 +165,7 @@ fn record(desk: &Desk, review: &Review, screened: &Screened) -> anyhow::Result<R
     for problem in record.problems() {
         eprintln!("radsieve: {}", clean_text(problem));
     }
+    record.producer_decides(review.producer(), desk.now)?;
     let recorded = record.tests_decide(screened, desk.now)?;
     record.close(PATIENCE).with_context(|| review.granule().name())?;
     Ok(recorded)
@@ -167,7 +180,15 @@ fn tell(file: &Path, outcome: &anyhow::Result<Outcome>, json: bool) -> std::io::
                 let other = clean_text(other);
                 eprintln!("radsieve: {file}: decisions of the rulebook {other} stand as well");
             }
+            for problem in &outcome.producer.problems {
+                eprintln!("radsieve: {file}: {problem}");
+            }
             if !json {
+                for one in &outcome.producer.rejections {
+                    let (count, flag) = (one.footprints.len(), &one.flag);
+                    let words = format!("{}: {count} footprints {flag}, {}", one.variable, one.why);
+                    eprintln!("radsieve: {file}: rejected by the producer's {words}");
+                }
                 writeln!(std::io::stdout(), "{file}: {}", line(&outcome.screened.summary()))?;
             }
         }
@@ -224,6 +245,13 @@ fn entry(file: &Path, outcome: &anyhow::Result<Outcome>) -> Value {
         "flagged": flagged,
         "no_flag": summary.no_flag,
         "not_assessed": summary.not_assessed,
+        "rejected_by_producer": outcome.producer.rejections.iter().map(|one| json!({
+            "variable": one.variable,
+            "flag": one.flag,
+            "footprints": one.footprints.len(),
+            "why": one.why,
+        })).collect::<Vec<_>>(),
+        "producer_problems": outcome.producer.problems,
         "mean_doubt": summary.mean_doubt.is_finite().then_some(summary.mean_doubt),
         "tests": tests(&outcome.screened),
         "decisions": outcome.recorded.as_ref().map(|recorded| json!({
@@ -260,10 +288,11 @@ fn explain(
     opening: &Opening,
     file: &Path,
     rulebook: &Rulebook,
+    quality: &QualityMap,
     position: &[usize],
     json: bool,
 ) -> anyhow::Result<Exit> {
-    let review = Review::open(opening, file)?;
+    let review = Review::open(opening, file)?.heeding(quality);
     let number = footprint("--explain", review.granule().footprints(), position)?;
     let screened = review.screen(rulebook, &Cancel::new())?;
     let evidence = screened.evidence(number).context("the footprint is gone")?;
@@ -276,10 +305,14 @@ fn explain(
             "file": file.display().to_string(),
             "position": position,
             "rulebook": head(rulebook),
+            "rejected_by_producer": review.producer().why(number),
             "evidence": evidence,
         });
         writeln!(out, "{answer}")?;
     } else {
+        if let Some(why) = review.producer().why(number) {
+            writeln!(out, "rejected, no test looks at it: {}", clean_text(&why))?;
+        }
         write_evidence(&evidence, rulebook, &mut out)?;
     }
     Ok(Exit::Done)

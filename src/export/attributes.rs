@@ -49,6 +49,9 @@ fn globals(
         ("granule_size_bytes", source.size.to_string()),
         ("granule_blake3", source.hash.clone()),
     ];
+    if !source.read_with.is_empty() {
+        globals.push(("read_with", source.read_with.join("; ")));
+    }
     globals.extend(source.title.iter().map(|title| ("granule_title", clean_text(title))));
     globals.extend(provenance.campaign.iter().map(|title| ("campaign", clean_text(title))));
     globals.extend(record_attributes(source, record));
@@ -77,6 +80,10 @@ fn record_attributes(source: &MaskSource, record: &Record<'_>) -> Vec<(&'static 
     let assessed = record.state.review.iter().filter(|&&state| state != ReviewState::NotAssessed);
     let share = format!("{} of {}", assessed.count(), source.footprint_count());
     attributes.push(("assessed_footprints", share));
+    let producer = record.producer();
+    if !producer.is_empty() {
+        attributes.push(("rejected_by_producer", producer.join("; ")));
+    }
     attributes.push(("vocabulary", vocabulary(record)));
     attributes.push(("usable_rule", usable_rule(record)));
     attributes

@@ -31,6 +31,7 @@ pub(super) fn source() -> MaskSource {
         latitude: Some((0..12).map(f64::from).collect()),
         longitude: Some((0..12).map(|at| if at == 3 { f64::NAN } else { f64::from(at) }).collect()),
         time: Some((0..12).map(f64::from).collect()),
+        read_with: Vec::new(),
         problems: vec!["apodisation is not named".to_owned()],
     }
 }

@@ -29,6 +29,7 @@ impl MaskSource {
             latitude: geolocation.latitude.clone(),
             longitude: geolocation.longitude.clone(),
             time: geolocation.time.clone(),
+            read_with: granule.read_with()?,
             problems,
         })
     }
@@ -42,7 +43,8 @@ pub fn granule_identity(granule: &Granule) -> Result<GranuleIdentity, GranuleErr
     let Identity { size, hash } = granule.hash()?.clone();
     let grid = granule.footprints();
     let footprints = grid.names().iter().cloned().zip(grid.lengths().iter().copied()).collect();
-    Ok(GranuleIdentity { hash, size, name: granule.name(), footprints })
+    let read_with = granule.read_with()?;
+    Ok(GranuleIdentity { hash, size, name: granule.name(), footprints, read_with })
 }
 
 fn mask_band(band: &Band) -> MaskBand {

@@ -4,7 +4,7 @@ use std::collections::BTreeSet;
 
 use jiff::Timestamp;
 
-use crate::flags::{Act, Decision, FlagState, GranuleState, Vocabulary};
+use crate::flags::{Act, Decision, FlagState, GranuleState, Origin, PRODUCER, Vocabulary};
 use crate::system::clean_text;
 
 /// Who exports, when, with what: passed in, so that the same decisions give the same bytes.
@@ -39,6 +39,25 @@ impl Record<'_> {
         let persons = self.decisions.iter().filter(|decision| decision.by_person());
         let names: BTreeSet<_> = persons.map(|decision| clean_text(&decision.person)).collect();
         names.into_iter().collect()
+    }
+
+    /// What the producer's quality rejects, by the decisions that stand: the variable, the flag, and
+    /// the meanings with their numbers of footprints.
+    pub fn producer(&self) -> Vec<String> {
+        let standing = crate::flags::standing(self.decisions);
+        let standing = self.decisions.iter().zip(standing).filter(|(_, stands)| *stands);
+        let mut words: Vec<String> = standing
+            .filter_map(|(decision, _)| {
+                let Origin::Test(test) = &decision.origin else { return None };
+                let variable = test.strip_prefix(PRODUCER)?;
+                let flag = decision.act.flag()?;
+                let why = decision.why.as_deref().unwrap_or_default();
+                Some(clean_text(&format!("{variable}: {why} as {flag}")))
+            })
+            .collect();
+        // Several people may have opened the granule at the same moment.
+        words.dedup();
+        words
     }
 
     /// The moments of the first and the last decision.

@@ -40,6 +40,8 @@ pub struct MaskSource {
     pub longitude: Option<Vec<f64>>,
     /// Seconds since 1970-01-01T00:00:00Z, leap seconds not counted; NaN is missing.
     pub time: Option<Vec<f64>>,
+    /// The layout file and the lending files that the granule was read with, in words.
+    pub read_with: Vec<String>,
     /// What was missing or guessed when the granule was read, in words.
     pub problems: Vec<String>,
 }

@@ -21,6 +21,9 @@ pub struct GranuleIdentity {
     pub name: String,
     /// The footprint dimensions: name and length, in the file's order.
     pub footprints: Vec<(String, usize)>,
+    /// The layout file and the lending files that it was read with, in words.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub read_with: Vec<String>,
 }
 
 impl GranuleIdentity {
@@ -256,6 +259,7 @@ mod tests {
             size: 3,
             name: "lowen_001.nc".to_owned(),
             footprints: vec![("line".to_owned(), 3)],
+            read_with: Vec::new(),
         };
         let folder = campaign.ledger_folder(&granule).unwrap();
         assert!(folder.ends_with("ledgers/lowen_001-0123456789ab"), "{folder:?}");

@@ -1,9 +1,10 @@
 //! The campaign's settings file.
 
+use std::collections::BTreeMap;
 use std::io::Write;
 use std::path::Path;
 
-use super::{CampaignError, FlagExtension, KeySetting, Vocabulary};
+use super::{CampaignError, FlagExtension, KeySetting, QualityMap, Vocabulary};
 
 /// The settings file's name in the campaign folder.
 pub const SETTINGS_FILE: &str = "campaign.toml";
@@ -29,6 +30,14 @@ format = 1
 # meaning = "sunlight mirrored by the sea raises the short-wave channels"
 # excludes = false            # true: keeps the footprint from the retrieval
 
+# The producer's word on quality comes before any test: one line for each bit or code of the
+# granules' flag variables. `radsieve describe FILE --as-quality-map` prints them.
+# [quality.scene_quality]
+# calibration_degraded = "reject"               # flagged bad_spectrum, no test looks at it
+# position_lost = "reject as bad_geolocation"   # flagged otherwise
+# daylight = "ignore"
+# moon_near = "show"
+
 # Keys of the review, by the names of docs/keys.md. A person's own settings come after these.
 # [keys]
 # undo = "U"
@@ -42,6 +51,8 @@ pub struct CampaignSettings {
     pub title: Option<String>,
     /// The released flags and the campaign's own.
     pub vocabulary: Vocabulary,
+    /// What is made of the producer's word on quality.
+    pub quality: QualityMap,
     /// Keys of this campaign's own.
     pub keys: Vec<KeySetting>,
     /// Settings that this version does not know, in words.
@@ -53,6 +64,7 @@ impl Default for CampaignSettings {
         Self {
             title: None,
             vocabulary: Vocabulary::released(),
+            quality: QualityMap::default(),
             keys: Vec::new(),
             problems: Vec::new(),
         }
@@ -66,6 +78,8 @@ struct Typed {
     title: Option<String>,
     #[serde(default)]
     flag: Vec<FlagExtension>,
+    #[serde(default)]
+    quality: BTreeMap<String, BTreeMap<String, String>>,
     #[serde(flatten)]
     unknown: toml::Table,
 }
@@ -89,10 +103,11 @@ impl CampaignSettings {
         }
         let vocabulary =
             Vocabulary::with_extensions(&typed.flag).map_err(|error| error.to_string())?;
+        let quality = QualityMap::read(typed.quality, &vocabulary)?;
         let keys = KeySetting::parse(text, SETTINGS_FILE)?;
         let unknown = typed.unknown.keys().filter(|key| *key != "keys");
         let problems = unknown.map(|key| format!("unknown setting `{key}` in {SETTINGS_FILE}"));
-        Ok(Self { title: typed.title, vocabulary, keys, problems: problems.collect() })
+        Ok(Self { title: typed.title, vocabulary, quality, keys, problems: problems.collect() })
     }
 
     /// Reads the settings of a campaign folder; a folder without the file has the defaults.

@@ -23,6 +23,10 @@ impl fmt::Display for DecisionId {
     }
 }
 
+/// What a test is called that hands on the producer's word on quality: this, and the name of the
+/// producer's variable.
+pub const PRODUCER: &str = "producer: ";
+
 /// Whether a person or a screening test speaks.
 #[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum Origin {

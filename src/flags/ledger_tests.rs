@@ -16,6 +16,7 @@ pub(super) fn granule() -> GranuleIdentity {
         size: 3,
         name: "lowen_001.nc".to_owned(),
         footprints: vec![("line".to_owned(), 4), ("position".to_owned(), 5)],
+        read_with: Vec::new(),
     }
 }
 

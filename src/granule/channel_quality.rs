@@ -63,7 +63,7 @@ fn channels(meanings: &[FlagMeaning], values: &[f64]) -> Vec<usize> {
 }
 
 /// Whether a meaning says that a channel is not to be used.
-fn gives_up(meaning: &str) -> bool {
+pub fn gives_up(meaning: &str) -> bool {
     let lower = meaning.to_lowercase();
     let words: Vec<&str> = lower.split(|one: char| !one.is_ascii_alphanumeric()).collect();
     words.iter().enumerate().any(|(place, word)| {

@@ -1,5 +1,6 @@
 //! Variables with one value for each footprint, or for each line or position of them.
 
+use super::channel_quality;
 use super::decoder::Decoder;
 use super::footprint_dimensions::FootprintDimensions;
 use crate::netcdf_files::{FileIndex, Variable};
@@ -63,6 +64,11 @@ impl FlagMeaning {
             Some(wanted) => value & self.mask == wanted,
             None => value & self.mask != 0,
         }
+    }
+
+    /// Whether the word says that what has it is not to be used: `bad`, `do_not_use` and their like.
+    pub fn gives_up(&self) -> bool {
+        channel_quality::gives_up(&self.meaning)
     }
 }
 

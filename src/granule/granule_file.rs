@@ -14,7 +14,7 @@ use super::footprints::FootprintGrid;
 use super::geolocation::Geolocation;
 use super::identity::Identity;
 use super::layout::Layout;
-use super::layout_file::BandEntry;
+use super::layout_file::{BandEntry, LayoutOrigin};
 use super::lent::{Calculated, Lender};
 use super::opening::Opening;
 use super::passing::PassingSlabs;
@@ -32,6 +32,7 @@ pub struct Granule {
     pub(super) sources: Vec<BandSource>,
     pub(super) geolocation: Geolocation,
     pub(super) variables: Vec<FootprintVariable>,
+    pub(super) layout: Option<LayoutOrigin>,
     pub(super) lenders: Vec<Lender>,
     /// For each band.
     pub(super) calculated: Vec<Option<Calculated>>,

@@ -21,6 +21,18 @@ pub struct LayoutFile {
     /// Fields of the geolocation, and under `<field>_unit` their units. An empty name means that
     /// the file has no such field.
     pub geolocation: std::collections::BTreeMap<String, String>,
+    /// Which file it was, if it was one.
+    #[serde(skip)]
+    pub origin: Option<LayoutOrigin>,
+}
+
+/// Which file a layout was read from.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct LayoutOrigin {
+    /// The file's name, safe to show.
+    pub name: String,
+    /// BLAKE3 hash of its text, 64 hexadecimal digits.
+    pub hash: String,
 }
 
 /// What a layout file says of a band.
@@ -97,6 +109,16 @@ impl LayoutFile {
             Some(place) => Err(format!("band {} says no `variable`", place + 1)),
             None => Ok(layout),
         }
+    }
+
+    /// Reads the text of the layout file that is called `name`.
+    ///
+    /// # Errors
+    /// As [`Self::parse`].
+    pub fn parse_named(name: &str, text: &str) -> Result<Self, String> {
+        let hash = blake3::hash(text.as_bytes()).to_hex().to_string();
+        let origin = Some(LayoutOrigin { name: clean_text(name), hash });
+        Ok(Self { origin, ..Self::parse(text)? })
     }
 
     /// The variable and the unit that are said of a field of the geolocation.

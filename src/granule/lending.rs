@@ -9,6 +9,7 @@ use super::footprints::FootprintGrid;
 use super::geolocation::{Geolocation, Origin, Over};
 use super::geolocation_fields::FIELDS;
 use super::granule_file::{BandSource, Granule};
+use super::layout_file::LayoutOrigin;
 use super::lent::{Calculated, CalculatedSearch, Lender};
 use super::opening::Opening;
 use super::problem::Problem;
@@ -175,12 +176,18 @@ impl Granule {
         Ok(Some(values))
     }
 
-    /// What else was read beside the file, for ledgers and masks: each lending file with its size,
-    /// its content hash, how it was joined, and what it lent. The first call reads these files whole.
+    /// The layout file that it was read with, if there was one.
+    pub fn layout_origin(&self) -> Option<&LayoutOrigin> {
+        self.layout.as_ref()
+    }
+
+    /// What was read beside the file, for ledgers and masks: the layout file with its content hash,
+    /// and each lending file with its size, its content hash, how it was joined, and what it lent.
+    /// The first call reads the lending files whole.
     ///
     /// # Errors
     /// One of them cannot be read, or is not the one that was opened.
-    pub fn lent_words(&self) -> Result<Vec<String>, GranuleError> {
+    pub fn read_with(&self) -> Result<Vec<String>, GranuleError> {
         let words = |(number, lender): (usize, &Lender)| {
             let identity = lender.hash()?;
             let fields = self.lent_by(number).join(", ");
@@ -195,7 +202,11 @@ impl Granule {
                 self.footprints.count(),
             ))
         };
-        self.lenders.iter().enumerate().map(words).collect()
+        let layout = self
+            .layout
+            .iter()
+            .map(|layout| Ok(format!("layout file {} (blake3 {})", layout.name, layout.hash)));
+        layout.chain(self.lenders.iter().enumerate().map(words)).collect()
     }
 
     /// What a lending file gives by itself: fields of the geolocation, and calculated spectra of

@@ -52,7 +52,7 @@ pub use footprints::FootprintGrid;
 pub use geolocation::{Geolocation, GeolocationSource, Origin};
 pub use granule_file::Granule;
 pub use identity::Identity;
-pub use layout_file::{ApodiseBy, BandEntry, LayoutFile};
+pub use layout_file::{ApodiseBy, BandEntry, LayoutFile, LayoutOrigin};
 pub use layout_text::layout_text;
 pub use lent::{Calculated, Join, Lender, LenderPattern, Within};
 pub use noise::Noise;

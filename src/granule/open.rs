@@ -115,6 +115,7 @@ pub fn open(
         sources,
         geolocation,
         variables: footprint_variables,
+        layout: layout.origin.clone(),
         lenders,
         calculated,
         problems,

@@ -26,6 +26,8 @@ pub struct GranuleNames<'g> {
     whole: Option<WholeGranule<'g>>,
     definitions: Option<&'g BTreeMap<String, Expression>>,
     judgements: Option<&'g dyn Judgements>,
+    /// One for each footprint, or none at all.
+    left_out: &'g [bool],
     kept: Option<&'g Kept>,
     own: Kept,
 }
@@ -39,6 +41,7 @@ impl<'g> GranuleNames<'g> {
             whole: None,
             definitions: None,
             judgements: None,
+            left_out: &[],
             kept: None,
             own: Kept::default(),
         }
@@ -53,6 +56,12 @@ impl<'g> GranuleNames<'g> {
     /// With what screening tests said.
     pub fn with_judgements(mut self, judgements: Option<&'g dyn Judgements>) -> Self {
         self.judgements = judgements;
+        self
+    }
+
+    /// Leaves out the spectra of some footprints: one truth for each footprint, or none at all.
+    pub fn leaving_out(mut self, left_out: &'g [bool]) -> Self {
+        self.left_out = left_out;
         self
     }
 
@@ -129,7 +138,16 @@ impl<'g> GranuleNames<'g> {
                     whole.channels_over(self.granule, band, &indices, footprints.clone(), part);
                 }
             }
+            self.leave_out(footprints, part);
             out = rest;
+        }
+    }
+
+    fn leave_out(&self, footprints: &Range<usize>, out: &mut [f64]) {
+        let Some(left_out) = self.left_out.get(footprints.clone()) else { return };
+        for column in out.chunks_mut(footprints.len().max(1)) {
+            let left_out = column.iter_mut().zip(left_out).filter(|(_, left_out)| **left_out);
+            left_out.for_each(|(value, _)| *value = f64::NAN);
         }
     }
 }
@@ -189,6 +207,10 @@ impl Names for GranuleNames<'_> {
             )),
             Err(error) => Err(NameError::Unreadable(error.to_string())),
         }
+    }
+
+    fn is_left_out(&self, footprint: usize) -> bool {
+        self.left_out.get(footprint).copied().unwrap_or(false)
     }
 
     fn is_complete(&self, channel: &Channel) -> bool {

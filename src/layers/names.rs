@@ -121,6 +121,12 @@ pub trait Names: Sync {
     /// There are no calculated spectra, or they can't be read.
     fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError>;
 
+    /// Whether a footprint is left out: its numbers from the spectrum are missing, and no test speaks
+    /// about it.
+    fn is_left_out(&self, _footprint: usize) -> bool {
+        false
+    }
+
     /// Whether all of the channel's numbers have been read; those that have not are NaN.
     fn is_complete(&self, channel: &Channel) -> bool;
 

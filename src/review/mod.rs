@@ -8,6 +8,7 @@
 mod cases;
 mod exporting;
 mod many_spectra;
+mod producer;
 mod record;
 mod reference_spectrum;
 mod rulebook_of;
@@ -22,6 +23,7 @@ mod verbs;
 pub use cases::Case;
 pub use exporting::ExportedBy;
 pub use many_spectra::ManySpectra;
+pub use producer::{Producer, Rejection};
 pub use record::Record;
 pub use reference_spectrum::ReferenceSpectrum;
 pub use review::Review;

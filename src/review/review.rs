@@ -3,8 +3,9 @@
 use std::path::Path;
 use std::sync::{Arc, Mutex, PoisonError};
 
+use super::Producer;
 use crate::export::granule_identity;
-use crate::flags::GranuleIdentity;
+use crate::flags::{GranuleIdentity, QualityMap};
 use crate::granule::{Channel, Cube, Granule, GranuleError, Opening};
 use crate::layers::{
     Expression, GranuleNames, Judgements, Kept, Layer, Mistake, channels_needed, evaluate_all,
@@ -19,6 +20,7 @@ pub struct Review {
     cube: Arc<Cube>,
     kept: Kept,
     tested: Mutex<Option<Arc<Screened>>>,
+    producer: Producer,
 }
 
 impl Review {
@@ -33,7 +35,20 @@ impl Review {
     /// Puts an open granule on the table.
     pub fn of(granule: Granule) -> Review {
         let cube = granule.cube();
-        Review { granule, cube, kept: Kept::default(), tested: Mutex::default() }
+        let (kept, producer) = (Kept::default(), Producer::default());
+        Review { granule, cube, kept, tested: Mutex::default(), producer }
+    }
+
+    /// The same, with the producer's word on quality taken as a campaign says: tests leave out the
+    /// footprints that it rejects. Reads the quality variables.
+    pub fn heeding(mut self, map: &QualityMap) -> Review {
+        self.producer = Producer::of(&self.granule, map);
+        self
+    }
+
+    /// What the producer says of the footprints' quality.
+    pub fn producer(&self) -> &Producer {
+        &self.producer
     }
 
     /// The granule.
@@ -51,12 +66,17 @@ impl Review {
         GranuleNames::new(&self.granule, &self.cube).keeping(&self.kept)
     }
 
+    /// The same for tests, which do not look at what the producer rejects.
+    fn names_for_tests(&self) -> GranuleNames<'_> {
+        self.names().leaving_out(&self.producer.left_out)
+    }
+
     /// Runs the tests of a rulebook; what they need and has not been read yet is read meanwhile.
     ///
     /// # Errors
     /// The file can't be read, or `cancel` was asked for.
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
-        self.names().lend_all(cancel, |names| screen(rulebook, names))
+        self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))
     }
 
     /// The channels that a layer is made from; none where the expression makes no sense.
@@ -67,7 +87,7 @@ impl Review {
 
     /// Runs the tests of a rulebook over what has been read so far.
     pub fn screen_so_far(&self, rulebook: &Rulebook) -> Screened {
-        screen(rulebook, &self.names())
+        screen(rulebook, &self.names_for_tests())
     }
 
     /// Lends what tests said to the layers from now on: `doubt`, `margin("…")` and their like.

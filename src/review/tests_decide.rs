@@ -1,9 +1,11 @@
 //! The tests' decisions, written into the ledger as the tests', never as a person's.
 
+use std::collections::{BTreeMap, BTreeSet};
+
 use jiff::Timestamp;
 
-use super::{Record, Refusal};
-use crate::flags::{Act, DOUBTFUL, Decision, DecisionId, FootprintSet, Origin, Scope};
+use super::{Producer, Record, Refusal};
+use crate::flags::{Act, DOUBTFUL, Decision, DecisionId, FootprintSet, Origin, PRODUCER, Scope};
 use crate::screening::Screened;
 
 /// What was written down.
@@ -77,13 +79,58 @@ impl Record {
         now: Timestamp,
     ) -> Result<Recorded, Refusal> {
         self.knows(&screened.rulebook.flags())?;
-        let name = &screened.rulebook.name;
-        let acts = test_acts(screened);
+        let recorded = self.replace(&screened.rulebook.name, test_acts(screened), now);
+        self.fold();
+        Ok(recorded)
+    }
+
+    /// Writes down whom the producer's quality rejects, in place of what it rejected before: as
+    /// decisions of tests that are called `producer: ` and the variable's name.
+    ///
+    /// # Errors
+    /// A flag that the campaign does not have.
+    pub fn producer_decides(
+        &mut self,
+        producer: &Producer,
+        now: Timestamp,
+    ) -> Result<Recorded, Refusal> {
+        let flags: Vec<&str> = producer.rejections.iter().map(|one| one.flag.as_str()).collect();
+        self.knows(&flags)?;
+        let mut acts: BTreeMap<String, Vec<(Act, Option<String>)>> = BTreeMap::new();
+        // A variable that rejects nobody any more takes back what it said.
+        for name in self.producers() {
+            acts.entry(name).or_default();
+        }
+        for one in &producer.rejections {
+            let act = flag_act(&one.flag, one.footprints.clone());
+            let name = format!("{PRODUCER}{}", one.variable);
+            acts.entry(name).or_default().push((act, Some(one.why.clone())));
+        }
+        let mut all = Recorded { unchanged: true, ..Recorded::default() };
+        for (name, acts) in acts {
+            let recorded = self.replace(&name, acts, now);
+            all.written += recorded.written;
+            all.replaced += recorded.replaced;
+            all.unchanged &= recorded.unchanged;
+        }
+        if !all.unchanged {
+            self.fold();
+        }
+        Ok(all)
+    }
+
+    /// Puts what one test says in place of what it said before; the caller folds.
+    fn replace(
+        &mut self,
+        name: &str,
+        acts: Vec<(Act, Option<String>)>,
+        now: Timestamp,
+    ) -> Recorded {
         let (earlier, others) = self.standing_tests(name);
         let mut recorded = Recorded { others, ..Recorded::default() };
         if say_the_same(&earlier, &acts) {
             recorded.unchanged = true;
-            return Ok(recorded);
+            return recorded;
         }
         let ids: Vec<DecisionId> = earlier.into_iter().map(|decision| decision.id).collect();
         recorded.replaced = ids.len();
@@ -94,8 +141,7 @@ impl Record {
         for (act, why) in acts {
             self.decide_as_test(name, act, why, now);
         }
-        self.fold();
-        Ok(recorded)
+        recorded
     }
 
     /// Compares what tests say with what stands in the ledgers.
@@ -126,6 +172,18 @@ impl Record {
         }
     }
 
+    /// The producer's variables whose decisions stand, by the names of their tests.
+    fn producers(&self) -> BTreeSet<String> {
+        let standing = self.decisions().iter().zip(self.standing());
+        let standing = standing
+            .filter(|(decision, stands)| **stands && !matches!(decision.act, Act::Revoke { .. }));
+        let names = standing.filter_map(|(decision, _)| match &decision.origin {
+            Origin::Test(name) if name.starts_with(PRODUCER) => Some(name.clone()),
+            _ => None,
+        });
+        names.collect()
+    }
+
     /// The decisions of one rulebook that stand, in their order, and who else decided as a test.
     fn standing_tests(&self, rulebook: &str) -> (Vec<Decision>, Vec<String>) {
         let (mut own, mut others) = (Vec::new(), Vec::new());
@@ -135,6 +193,7 @@ impl Record {
             match &decision.origin {
                 Origin::Test(_) if matches!(decision.act, Act::Revoke { .. }) => {}
                 Origin::Test(name) if name == rulebook => own.push(decision.clone()),
+                Origin::Test(name) if name.starts_with(PRODUCER) => {}
                 Origin::Test(name) if !others.contains(name) => others.push(name.clone()),
                 _ => {}
             }

@@ -47,6 +47,10 @@ impl Names for LentNames<'_> {
         self.names.clear_temperature(channel)
     }
 
+    fn is_left_out(&self, footprint: usize) -> bool {
+        self.names.is_left_out(footprint)
+    }
+
     fn is_complete(&self, channel: &Channel) -> bool {
         self.names.is_complete(channel)
     }

@@ -53,7 +53,11 @@ pub fn run(rulebook: &Rulebook, names: &dyn Names) -> (Vec<Option<usize>>, Vec<T
     let expressions = expressions(rulebook);
     let layers = evaluate_all(&expressions, &names);
     let layers: Layers<'_> = expressions.into_iter().zip(layers).collect();
-    let surfaces = surfaces(rulebook, &layers, names.footprints());
+    let mut surfaces = surfaces(rulebook, &layers, names.footprints());
+    // Without a surface no test speaks.
+    for (at, surface) in surfaces.iter_mut().enumerate() {
+        *surface = surface.filter(|_| !names.is_left_out(at));
+    }
     let tests = rulebook.tests.par_iter().map(|test| one(test, &surfaces, &layers)).collect();
     (surfaces, tests)
 }

@@ -55,6 +55,7 @@ mod tests {
             size: 1,
             name: "lowen.nc".to_owned(),
             footprints: vec![("line".to_owned(), 100)],
+            read_with: Vec::new(),
         };
         assert_eq!(read(&campaign, &granule, "ada"), None);
         let place = Place {

@@ -31,6 +31,7 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         }
         Job::Open { request, path } => {
             let found = Review::open(&outside.opening, path);
+            let found = found.map(|review| review.heeding(&outside.campaign.settings().quality));
             let found = found.map(Arc::new).map_err(in_words);
             send(Answer::Opened { request: *request, found });
         }
@@ -176,7 +177,9 @@ fn record(
     let place = place::read(&outside.campaign, &identity, &outside.author.person);
     let now = (outside.clock)();
     let record = Record::open(&outside.campaign, identity, &outside.author, &outside.program, now);
-    Ok((Box::new(record.map_err(|error| error.to_string())?), place))
+    let mut record = record.map_err(|error| error.to_string())?;
+    record.producer_decides(review.producer(), now).map_err(|error| error.to_string())?;
+    Ok((Box::new(record), place))
 }
 
 /// Whoever cancelled it gets no answer.

@@ -77,6 +77,7 @@ impl Desk {
             size: content.len() as u64,
             name: granule.file_name().unwrap().to_str().unwrap().to_owned(),
             footprints: vec![("scan_line".to_owned(), LINES), ("position".to_owned(), POSITIONS)],
+            read_with: Vec::new(),
         };
         let author = Author { person: "anna".to_owned(), host: "node7".to_owned(), process: 1 };
         let now = "2026-01-31T11:00:00Z".parse().unwrap();

@@ -77,6 +77,8 @@ fn the_layout_printed_describes_the_same_granule() {
         // The unit of the latitude was a guess the first time and is said the second time.
         let problems = description["problems"].take();
         assert!(!problems.to_string().contains("spectral axis"), "{problems}");
+        let layout = description["layout_file"].take();
+        assert_eq!(layout["blake3"].as_str().unwrap().len(), 64);
         description
     });
     assert_eq!(first, again);

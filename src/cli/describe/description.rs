@@ -22,6 +22,8 @@ pub struct Description {
     pub memory_bytes: usize,
     pub title: Option<String>,
     pub source: Option<String>,
+    /// The layout file that was used.
+    pub layout_file: Option<LayoutDescription>,
     pub footprints: Footprints,
     pub bands: Vec<BandDescription>,
     pub geolocation: Vec<Field>,
@@ -29,6 +31,13 @@ pub struct Description {
     /// Files that lend fields.
     pub lenders: Vec<LenderDescription>,
     pub problems: Vec<ProblemDescription>,
+}
+
+/// A layout file.
+#[derive(Debug, Serialize)]
+pub struct LayoutDescription {
+    pub file: String,
+    pub blake3: String,
 }
 
 /// A file that lends.
@@ -172,6 +181,10 @@ impl Description {
             memory_bytes: granule.cube_bytes(),
             title: granule.title(),
             source: granule.source(),
+            layout_file: granule.layout_origin().map(|origin| LayoutDescription {
+                file: origin.name.clone(),
+                blake3: origin.hash.clone(),
+            }),
             footprints: Footprints::of(granule),
             bands: bands.map(|(place, band)| BandDescription::of(granule, place, band)).collect(),
             geolocation: fields(granule),

@@ -21,6 +21,9 @@ pub fn print(description: &Description, out: &mut impl Write) -> io::Result<()> 
             writeln!(out, "  {name}: {text}")?;
         }
     }
+    if let Some(layout) = &description.layout_file {
+        writeln!(out, "  layout file: {} (blake3 {})", layout.file, layout.blake3)?;
+    }
     print_footprints(description, out)?;
     heading(out, "Bands", description.bands.is_empty())?;
     for band in &description.bands {

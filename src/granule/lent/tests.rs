@@ -99,7 +99,7 @@ fn a_file_of_the_same_dimensions_lends_what_the_granule_lacks() {
     let lender = &granule.lenders()[0];
     assert_eq!((lender.how(), lender.matched()), (&Join::Dimensions, 6));
     assert_eq!(granule.lent_by(0), ["surface_temperature"]);
-    let words = granule.lent_words().unwrap().remove(0);
+    let words = granule.read_with().unwrap().remove(0);
     assert!(words.contains("joined by dimensions, 6 of 6 footprints"), "{words}");
     assert!(words.contains(&lender.hash().unwrap().hash), "{words}");
 }

@@ -169,6 +169,9 @@ fn quality(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
         return;
     }
     section(rows, "Quality");
+    if let Some(why) = bench.review.producer().why(bench.cursor) {
+        rows.push(EvidenceRow::Words(format!("rejected by the {}", clean_text(&why)), Tone::Bad));
+    }
     for quality in &bench.quality {
         let Some(variable) = bench.review.granule().variables().get(quality.variable) else {
             continue;
@@ -177,7 +180,7 @@ fn quality(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
         rows.push(match &quality.values {
             Ok(values) => {
                 let value = values.get(bench.cursor).copied().unwrap_or(f64::NAN);
-                let meanings = variable.meanings_of(value).join(", ");
+                let meanings = bench.review.producer().shown(variable, value).join(", ");
                 let shown = if value.is_nan() { "missing".to_owned() } else { value.to_string() };
                 let units = if variable.units == "1" { "" } else { &variable.units };
                 match fact(&name, shown, units) {

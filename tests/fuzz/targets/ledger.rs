@@ -26,6 +26,7 @@ fn desk() -> Desk {
         size: 4096,
         name: "synthetic.nc".to_owned(),
         footprints: vec![("line".to_owned(), 3), ("position".to_owned(), 4)],
+        read_with: Vec::new(),
     };
     let ledgers = folder.path().join("ledgers").join(format!("synthetic-{}", granule.short()));
     std::fs::create_dir_all(&ledgers).expect("a folder for ledgers");
