@@ -12,6 +12,7 @@ mod exit;
 mod export;
 mod footprint_at;
 mod inputs;
+mod instrument;
 mod manual;
 mod natural_order;
 #[cfg(feature = "terminal")]

@@ -11,12 +11,13 @@ use serde_json::{Value, json};
 use super::exit::UsageError;
 use super::footprint_at::{footprint, indices};
 use super::inputs::{Inputs, Reading};
+use super::instrument::{instrument, instrument_words, write_spectrum_evidence};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
 use crate::flags::{Author, Campaign, CampaignError, QualityMap};
 use crate::granule::Opening;
 use crate::review::{Producer, Record, Recorded, Review, rulebook_of};
-use crate::screening::{Evidence, Rulebook, Screened, Summary, TestEvidence, Verdict};
+use crate::screening::{Evidence, Rulebook, Screened, TestEvidence, Verdict};
 use crate::system::{Cancel, clean_text};
 
 /// How long to wait for a slow disk before the decisions count as lost.
@@ -189,7 +190,7 @@ fn tell(file: &Path, outcome: &anyhow::Result<Outcome>, json: bool) -> std::io::
                     let words = format!("{}: {count} footprints {flag}, {}", one.variable, one.why);
                     eprintln!("radsieve: {file}: rejected by the producer's {words}");
                 }
-                writeln!(std::io::stdout(), "{file}: {}", line(&outcome.screened.summary()))?;
+                writeln!(std::io::stdout(), "{file}: {}", line(&outcome.screened))?;
             }
         }
         Err(error) => {
@@ -202,7 +203,8 @@ fn tell(file: &Path, outcome: &anyhow::Result<Outcome>, json: bool) -> std::io::
     Ok(())
 }
 
-fn line(summary: &Summary) -> String {
+fn line(screened: &Screened) -> String {
+    let summary = screened.summary();
     let percent = |count: usize| format!("{:.1} %", percent(count, summary.footprints));
     let mut parts: Vec<String> = summary
         .flagged
@@ -215,7 +217,8 @@ fn line(summary: &Summary) -> String {
     if summary.mean_doubt.is_finite() {
         parts.push(format!("mean doubt {:.2}", summary.mean_doubt));
     }
-    format!("{} footprints: {}", summary.footprints, parts.join(", "))
+    let instrument = screened.examined.as_ref().map(instrument_words).unwrap_or_default();
+    format!("{} footprints: {}{instrument}", summary.footprints, parts.join(", "))
 }
 
 fn percent(count: usize, all: usize) -> f64 {
@@ -254,6 +257,7 @@ fn entry(file: &Path, outcome: &anyhow::Result<Outcome>) -> Value {
         "producer_problems": outcome.producer.problems,
         "mean_doubt": summary.mean_doubt.is_finite().then_some(summary.mean_doubt),
         "tests": tests(&outcome.screened),
+        "instrument": outcome.screened.examined.as_ref().map(instrument),
         "decisions": outcome.recorded.as_ref().map(|recorded| json!({
             "written": recorded.written,
             "replaced": recorded.replaced,
@@ -352,7 +356,7 @@ fn write_evidence(
             }
         }
     }
-    Ok(())
+    write_spectrum_evidence(evidence, out)
 }
 
 fn write_test(test: &TestEvidence, out: &mut dyn Write) -> std::io::Result<()> {

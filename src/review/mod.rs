@@ -16,6 +16,7 @@ mod rulings;
 mod tests_decide;
 #[allow(clippy::module_inception)] // The room is named after the thing.
 mod review;
+mod spectra_decide;
 mod spectrum;
 mod suggestions;
 mod verbs;

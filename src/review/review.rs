@@ -10,6 +10,7 @@ use crate::granule::{Channel, Cube, Granule, GranuleError, Opening};
 use crate::layers::{
     Expression, GranuleNames, Judgements, Kept, Layer, Mistake, channels_needed, evaluate_all,
 };
+use crate::screening::health::examine;
 use crate::screening::{Rulebook, Screened, screen};
 use crate::system::Cancel;
 
@@ -71,12 +72,17 @@ impl Review {
         self.names().leaving_out(&self.producer.left_out)
     }
 
-    /// Runs the tests of a rulebook; what they need and has not been read yet is read meanwhile.
+    /// Runs the tests of a rulebook, and examines the spectra as a set; what has not been read yet is
+    /// read before. A granule that does not fit into memory is read as the tests need it, and only what
+    /// is in memory is examined.
     ///
     /// # Errors
     /// The file can't be read, or `cancel` was asked for.
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
-        self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))
+        self.granule.fill(cancel, &mut |_| {})?;
+        let screened = self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))?;
+        let examined = examine(&self.granule, &self.cube, &rulebook.health);
+        Ok(Screened { examined: Some(examined), ..screened })
     }
 
     /// The channels that a layer is made from; none where the expression makes no sense.

@@ -4,6 +4,7 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use jiff::Timestamp;
 
+use super::spectra_decide::spectra_acts;
 use super::{Producer, Record, Refusal};
 use crate::flags::{Act, DOUBTFUL, Decision, DecisionId, FootprintSet, Origin, PRODUCER, Scope};
 use crate::screening::Screened;
@@ -54,6 +55,7 @@ pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     let why = format!("rulebook {} ({})", rulebook.name, rulebook.fingerprint);
     acts.push((Act::Assess { footprints: assessed }, Some(why)));
     acts.retain(|(act, _)| act.footprints().is_some_and(|footprints| !footprints.is_empty()));
+    acts.extend(screened.examined.iter().flat_map(spectra_acts));
     acts
 }
 

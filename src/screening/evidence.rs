@@ -2,6 +2,7 @@
 
 use serde::{Serialize, Serializer};
 
+use super::health::Examined;
 use super::rulebook::{Test, Way};
 use super::run_tests::TestResult;
 use super::screened::{Councils, Screened, Seat};
@@ -23,6 +24,52 @@ pub struct Evidence {
     pub flags: Vec<FlagEvidence>,
     /// Test by test, in the order of the rulebook.
     pub tests: Vec<TestEvidence>,
+    /// What is wrong with the spectrum, its detector or its band.
+    pub health: Vec<HealthEvidence>,
+    /// How well the granule's components rebuild it, band by band.
+    pub reconstruction: Vec<Reconstruction>,
+}
+
+/// Something that is wrong with the instrument here.
+#[derive(Debug, Clone, Serialize)]
+pub struct HealthEvidence {
+    /// What was looked for.
+    pub check: &'static str,
+    /// The flag that it suggests.
+    pub flag: Option<&'static str>,
+    /// The band that it is limited to; `None` for the whole spectrum.
+    pub band: Option<String>,
+    /// What was found.
+    pub value: f64,
+    /// The limit that it passes.
+    pub limit: f64,
+    /// Unit of both.
+    pub unit: &'static str,
+    /// Where the limit comes from.
+    pub source: &'static str,
+    /// All of it in one line.
+    pub words: String,
+}
+
+/// How well a band's spectrum is rebuilt from principal components (T20).
+#[derive(Debug, Clone, Serialize)]
+pub struct Reconstruction {
+    /// The band.
+    pub band: String,
+    /// Root of the mean square of what is not explained, noise units; `None` where too much is
+    /// missing.
+    pub score: Option<f64>,
+    /// The score from which on a spectrum is unusual.
+    pub limit: f64,
+    /// Whether it is.
+    pub unusual: bool,
+    /// How many components there are.
+    pub components: usize,
+    /// Where they come from: `own` or a file.
+    pub basis: String,
+    /// Where it is unusual, the channels that make it so: wavenumber (cm-1) and what is not explained
+    /// in noise units.
+    pub channels: Vec<(f64, f64)>,
 }
 
 /// What is concluded about a flag.
@@ -110,6 +157,8 @@ impl Screened {
             doubt: self.doubt[footprint],
             flags: flags.collect(),
             tests: tests.map(|(test, result)| evidence(test, result, footprint)).collect(),
+            health: self.examined.iter().flat_map(|one| health(one, footprint)).collect(),
+            reconstruction: self.examined.iter().flat_map(|one| rebuilt(one, footprint)).collect(),
         })
     }
 
@@ -133,6 +182,37 @@ impl Screened {
             families: seats.iter().map(voice).collect(),
         }
     }
+}
+
+fn health(examined: &Examined, footprint: usize) -> Vec<HealthEvidence> {
+    let findings = examined.of_footprint(footprint);
+    let evidence = findings.map(|finding| HealthEvidence {
+        check: finding.check.name(),
+        flag: finding.check.flag(),
+        band: finding.band.map(|band| examined.band_name(band).to_owned()),
+        value: finding.value,
+        limit: finding.limit,
+        unit: finding.unit,
+        source: finding.source,
+        words: finding.words(),
+    });
+    evidence.collect()
+}
+
+fn rebuilt(examined: &Examined, footprint: usize) -> Vec<Reconstruction> {
+    let bands = examined.bands.iter().filter_map(|band| {
+        let unusual = examined.unusual_of(footprint).find(|one| one.band == band.band);
+        Some(Reconstruction {
+            band: examined.band_name(band.band).to_owned(),
+            score: present(band.scores[footprint]),
+            limit: band.limit,
+            unusual: unusual.is_some(),
+            components: band.basis.as_ref()?.components(),
+            basis: band.origin.name().to_owned(),
+            channels: unusual.map(|one| one.channels.clone()).unwrap_or_default(),
+        })
+    });
+    bands.collect()
 }
 
 fn evidence(test: &Test, result: &TestResult, footprint: usize) -> TestEvidence {

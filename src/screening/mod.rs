@@ -13,6 +13,7 @@ mod catalogue_used;
 mod check_names;
 mod combine;
 mod evidence;
+pub mod health;
 mod judgements;
 mod lent_names;
 mod mistakes;
@@ -23,6 +24,7 @@ mod run_tests;
 mod screened;
 mod table_reader;
 mod threshold;
+pub mod unusual;
 mod verdict;
 
 #[cfg(test)]
@@ -33,7 +35,9 @@ mod rulebook_tests;
 mod worked_tests;
 
 pub use builtin::{BUILTIN_TEXT, builtin};
-pub use evidence::{Evidence, FamilyVoice, FlagEvidence, TestEvidence};
+pub use evidence::{
+    Evidence, FamilyVoice, FlagEvidence, HealthEvidence, Reconstruction, TestEvidence,
+};
 pub use mistakes::{RuleMistake, RulebookError};
 pub use rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
 pub use run_tests::TestResult;

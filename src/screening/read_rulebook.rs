@@ -3,10 +3,12 @@
 use std::collections::BTreeMap;
 use std::ops::Range;
 
-use toml::de::DeTable;
+use toml::Spanned;
+use toml::de::{DeTable, DeValue};
 
 use super::catalogue_used::catalogue_used;
 use super::check_names::check_names;
+use super::health::HealthLimits;
 use super::mistakes::RulebookError;
 use super::read_threshold::threshold;
 use super::rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
@@ -67,7 +69,9 @@ fn read(text: &str, notebook: &mut Notebook) -> Option<Rulebook> {
     if tests.is_empty() {
         top.wrong_here("there are no tests: write at least one, headed [[tests]]");
     }
+    let health = top.value("health");
     top.finish();
+    let health = health.map(|value| health_limits(notebook, value)).unwrap_or_default();
     let mut definitions = each(notebook, "definitions", &definitions, definition);
     let families = each(notebook, "families", &families, family);
     let mut surfaces = each(notebook, "surfaces", &surfaces, surface);
@@ -97,6 +101,7 @@ fn read(text: &str, notebook: &mut Notebook) -> Option<Rulebook> {
         families: without_spans(families),
         surfaces: without_spans(surfaces),
         tests: without_spans(tests),
+        health,
         fingerprint,
         by_name,
     };
@@ -113,6 +118,17 @@ fn fingerprint(text: &str, taken: &[Definition]) -> String {
         hash.update(format!("\n{} = {}", definition.name, definition.expression).as_bytes());
     }
     hash.finalize().to_hex()[..12].to_owned()
+}
+
+fn health_limits(notebook: &mut Notebook, value: &Spanned<DeValue<'_>>) -> HealthLimits {
+    let Some(table) = value.get_ref().as_table() else {
+        notebook.note(&value.span(), "health", "expected a table headed [health]");
+        return HealthLimits::default();
+    };
+    let mut reader = TableReader::new(notebook, "health", value.span(), table);
+    let limits = HealthLimits::read(&mut reader);
+    reader.finish();
+    limits
 }
 
 /// What was read, with its places, before it is known to be right.

@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+use super::health::HealthLimits;
 use super::threshold::{Sense, Threshold};
 use crate::layers::Expression;
 
@@ -28,6 +29,8 @@ pub struct Rulebook {
     pub surfaces: Vec<Surface>,
     /// The tests.
     pub tests: Vec<Test>,
+    /// Limits of instrument health and of unusual spectra.
+    pub health: HealthLimits,
     /// Names the text: the beginning of its BLAKE3 hash.
     pub fingerprint: String,
     /// The definitions as expressions find them.

@@ -5,6 +5,7 @@ use std::collections::BTreeMap;
 use rayon::prelude::*;
 
 use super::combine::{Conclusion, Voice, conclude, family_voice};
+use super::health::{Check, Examined};
 use super::rulebook::Rulebook;
 use super::run_tests::{TestResult, run};
 use crate::layers::Names;
@@ -24,6 +25,8 @@ pub struct Screened {
     pub assessed: Vec<bool>,
     /// 0 plain, 1 a coin toss or hardly assessed.
     pub doubt: Vec<f64>,
+    /// What the spectra say as a set, where they have been looked at.
+    pub examined: Option<Examined>,
 }
 
 /// What is concluded about a flag, footprint by footprint.
@@ -75,7 +78,7 @@ pub fn screen(rulebook: &Rulebook, names: &dyn Names) -> Screened {
     let footprints = 0..surfaces.len();
     let assessed = footprints.clone().map(|at| is_assessed(rulebook, &flags, at)).collect();
     let doubt = footprints.map(|at| doubt(&flags, at)).collect();
-    Screened { rulebook: rulebook.clone(), surfaces, tests, flags, assessed, doubt }
+    Screened { rulebook: rulebook.clone(), surfaces, tests, flags, assessed, doubt, examined: None }
 }
 
 /// A family that speaks about a flag on a surface.
@@ -190,18 +193,34 @@ impl Screened {
             .collect()
     }
 
+    /// Whether a flag is set on a footprint, by the tests or by what the spectra say as a set.
+    pub fn is_flagged(&self, flag: &str, footprint: usize) -> bool {
+        let by_test = self.flags.iter().any(|one| one.flag == flag && one.is_set(footprint));
+        by_test || self.examined.as_ref().is_some_and(|one| one.suggests(flag, footprint))
+    }
+
+    /// The flags that may be set, in the order of the rulebook.
+    pub fn flag_names(&self) -> Vec<&str> {
+        let mut names: Vec<&str> = self.flags.iter().map(|flag| flag.flag.as_str()).collect();
+        if self.examined.is_some() {
+            let more = [Check::BAD_SPECTRUM, Check::UNUSUAL];
+            let new: Vec<&str> = more.into_iter().filter(|name| !names.contains(name)).collect();
+            names.extend(new);
+        }
+        names
+    }
+
     /// How the granule came out.
     pub fn summary(&self) -> Summary {
         let all = || 0..self.footprints();
+        let names = self.flag_names();
         let assessed: Vec<usize> = all().filter(|at| self.assessed[*at]).collect();
-        let mut flagged: Vec<(String, usize)> = self
-            .flags
-            .iter()
-            .map(|flag| (flag.flag.clone(), all().filter(|at| flag.is_set(*at)).count()))
-            .collect();
+        let count = |name: &str| all().filter(|at| self.is_flagged(name, *at)).count();
+        let mut flagged: Vec<(String, usize)> =
+            names.iter().map(|name| ((*name).to_owned(), count(name))).collect();
         let doubtful = all().filter(|at| self.is_doubtful(*at)).count();
         flagged.push(("doubtful".to_owned(), doubtful));
-        let plain = |at: &&usize| !self.flags.iter().any(|flag| flag.is_set(**at));
+        let plain = |at: &&usize| !names.iter().any(|name| self.is_flagged(name, **at));
         let doubt: f64 = assessed.iter().map(|at| self.doubt[*at]).sum();
         Summary {
             footprints: self.footprints(),

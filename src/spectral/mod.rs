@@ -13,10 +13,12 @@ mod channel_axis;
 mod energy;
 pub mod fast;
 mod noise;
+mod noise_shape;
 mod planck;
 mod planck_forms;
 #[cfg(test)]
 mod reference_tables;
+mod robust;
 mod segments;
 
 pub use absorption_bands::{ABSORPTION_BANDS, AbsorptionBand};
@@ -28,9 +30,11 @@ pub use energy::{
     ENERGY_BANDS, Energy, EnergyBand, Stretch, absorption, energy_view, window_temperature,
 };
 pub use noise::{nedt, nedt_at};
+pub use noise_shape::NoiseShape;
 pub use planck::{
     NoTemperature, brightness_temperature, brightness_temperature_or_nan, planck, planck_slope,
 };
 pub use planck_forms::{
     planck_frequency, planck_wavelength, temperature_frequency, temperature_wavelength,
 };
+pub use robust::{centre_and_deviation, deviation_from_zero, median, running_median};

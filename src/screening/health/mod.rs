@@ -1,0 +1,22 @@
+//! How an instrument does, from the spectra of one granule: channels, detectors, single spectra.
+//!
+//! No judgement here looks at anything but the spectra, and the noise that the file gives.
+
+mod channels;
+mod detectors;
+mod examine;
+mod finding;
+mod grid;
+mod limits;
+mod readings;
+mod repeats;
+mod ringing;
+mod sample;
+mod spectra;
+
+pub use channels::ChannelNoise;
+pub use detectors::DetectorNumbers;
+pub use examine::{BandHealth, BasisOrigin, Examined, UnusualSpectrum, examine};
+pub use finding::{Check, Finding, Subject};
+pub use grid::ScanGrid;
+pub use limits::{HealthLimits, LIMITS, LimitKind};
