@@ -46,9 +46,10 @@ impl Basis {
         self.variances.len()
     }
 
-    /// Score from which on a spectrum is unusual: so many standard deviations above the mean.
+    /// Score from which on a spectrum is unusual: so many standard deviations above the mean, and
+    /// never less than 1, for what is rebuilt to within its noise is not.
     pub fn limit(&self, deviations: f64) -> f64 {
-        self.scores.mean + deviations * self.scores.deviation
+        (self.scores.mean + deviations * self.scores.deviation).max(1.0)
     }
 
     fn component(&self, number: usize) -> &[f64] {
