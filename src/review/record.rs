@@ -7,8 +7,8 @@ use jiff::Timestamp;
 
 use crate::flags::{
     Act, Author, Campaign, CampaignError, Counts, Decision, DecisionId, FlagState, GranuleIdentity,
-    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, OwnTimes, Replay, Vocabulary,
-    own_times, read_ledgers, standing,
+    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, OwnTimes, Replay, SpotCheck,
+    Vocabulary, own_times, read_ledgers, standing,
 };
 
 /// The decisions about a granule, their sum, and the writer of our own.
@@ -211,6 +211,15 @@ impl Record {
     /// For each of them, whether it stands: not taken back, or taken back and put back again.
     pub fn standing(&self) -> &[bool] {
         &self.standing
+    }
+
+    /// The spot checks that stand, in their order.
+    pub fn spot_checks(&self) -> impl Iterator<Item = &SpotCheck> {
+        let standing = self.decisions.iter().zip(&self.standing).filter(|(_, stands)| **stands);
+        standing.filter_map(|(decision, _)| match &decision.act {
+            Act::SpotCheck(check) if decision.by_person() => Some(check),
+            _ => None,
+        })
     }
 
     /// What was wrong with the ledgers, in words.

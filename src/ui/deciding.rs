@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use jiff::Timestamp;
 
-use crate::flags::{Act, Decision, GranuleState, Ruling, Scope};
+use crate::flags::{Act, Decision, Ruling, Scope};
 use crate::review::{Record, Refusal};
 
 use super::app::App;
@@ -15,6 +15,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
 use super::overlay::{Deed, FlagPrompt, Overlay, Selection};
+use super::signing;
 use super::undoing;
 
 /// Does what a key of deciding says.
@@ -24,7 +25,7 @@ pub fn decide(app: &mut App, action: Action) -> Vec<Job> {
         Action::Withdraw => choose_flag(app, false),
         Action::Again => again(app),
         Action::Assess => assess(app),
-        Action::SignOff => ask_sign_off(app),
+        Action::SignOff => signing::ask(app),
         Action::Undo | Action::Redo => undoing::undo_or_redo(app, action),
         _ => change(app, |record, now| record.reopen(now).map(|()| "taken in hand again".into())),
     }
@@ -150,28 +151,6 @@ fn assess(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return no_granule(app) };
     let selection = bench.selection();
     carry_out(app, Deed::Assess, selection)
-}
-
-/// Signing off asks what the footprints without flag and assessment are, if there are any.
-fn ask_sign_off(app: &mut App) -> Vec<Job> {
-    let record = app.bench().and_then(|bench| bench.record.open());
-    let signed = record.is_some_and(|record| record.state().granule == GranuleState::SignedOff);
-    match record {
-        Some(record) if !signed && record.counts().not_assessed > 0 => {
-            app.overlay = Overlay::SignOff;
-            Vec::new()
-        }
-        _ => sign_off(app, false),
-    }
-}
-
-/// Signs off, the rest counting as looked at or not.
-pub fn sign_off(app: &mut App, rest_looked_at: bool) -> Vec<Job> {
-    let next = app.keymap.hint(Action::NextUnsigned);
-    change(app, move |record, now| {
-        record.sign_off(rest_looked_at, now)?;
-        Ok(format!("signed off; {next}: next granule"))
-    })
 }
 
 /// Exports the mask of the granule on the table, into `folder` or the campaign's own, as soon as

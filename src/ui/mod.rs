@@ -45,6 +45,7 @@ mod screening;
 mod selecting;
 mod shown_layer;
 mod side;
+mod signing;
 mod signals;
 mod spectrum_window;
 mod terminal;

@@ -9,6 +9,7 @@ use super::key::{Code, Key};
 use super::keys::Action;
 use super::looking;
 use super::overlay::{Deed, FlagPrompt, LinePrompt, Overlay, Purpose};
+use super::signing;
 use super::turning;
 use super::typing;
 use super::update::is_yes;
@@ -50,7 +51,7 @@ pub fn press(app: &mut App, key: Key) -> Vec<Job> {
         Overlay::Line(prompt) => typing::press(app, key, prompt),
         Overlay::Flags(_) if escape => Vec::new(),
         Overlay::Flags(prompt) => choose(app, key, prompt),
-        Overlay::SignOff => answer_sign_off(app, key),
+        Overlay::SignOff => signing::answer(app, key),
         Overlay::LeaveAnyway => answer_leave(app, key),
     }
 }
@@ -115,21 +116,6 @@ fn by_letter(app: &mut App, prompt: &FlagPrompt, letter: char) -> Option<String>
     let vocabulary = &app.outside.campaign.settings().vocabulary;
     let kind = vocabulary.by_key(Scope::Footprint, letter)?;
     prompt.flags.contains(&kind.name).then(|| kind.name.clone())
-}
-
-fn answer_sign_off(app: &mut App, key: Key) -> Vec<Job> {
-    match key.code {
-        _ if is_yes(key) => deciding::sign_off(app, true),
-        Code::Char('n' | 'N') => deciding::sign_off(app, false),
-        Code::Esc => {
-            app.say("not signed off");
-            Vec::new()
-        }
-        _ => {
-            app.overlay = Overlay::SignOff;
-            Vec::new()
-        }
-    }
 }
 
 fn answer_leave(app: &mut App, key: Key) -> Vec<Job> {

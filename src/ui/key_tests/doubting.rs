@@ -3,7 +3,8 @@
 
 use super::append_byte;
 use super::screening::{place, screen};
-use crate::flags::{Act, ReviewState, Ruling};
+use crate::flags::{Act, GranuleState, ReviewState, Ruling};
+use crate::review::OnRecord;
 use crate::ui::overlay::Overlay;
 use crate::ui::trial::{Place, Trial};
 
@@ -117,6 +118,24 @@ fn behind_the_last_case_the_next_granule_in_doubt_is_opened() {
     trial.keys("y Space y Space Space");
     assert_eq!(trial.granule(), "b.nc");
     assert!(trial.screen(120, 40).contains("doubt"));
+}
+
+#[test]
+fn signing_off_with_the_tests_leaves_them_the_rest() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("Space y S");
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains("left in doubt: 1, in 1 cases"), "{screen}");
+    assert!(screen.contains("t: the tests answer for 27 of them"), "{screen}");
+    assert!(screen.contains("also the 13 that the tests would flag"), "{screen}");
+    trial.keys("t");
+    assert_eq!(trial.record().state().granule, GranuleState::SignedOff);
+    let counts = trial.record().counts();
+    assert_eq!((counts.by_person, counts.by_test, counts.not_assessed), (3, 27, 0));
+    assert_eq!(trial.flagged("cloudy"), (0..10).collect::<Vec<_>>());
+    assert_eq!(trial.flagged("doubtful"), [25], "what a person settled is not in doubt");
+    let tests = trial.record().decisions().iter().filter(|one| !one.by_person()).count();
+    assert!(tests > 0 && trial.bench().tests.on_record == OnRecord::Same);
 }
 
 #[test]

@@ -5,7 +5,7 @@ use ratatui::layout::Rect;
 use unicode_width::UnicodeWidthStr;
 
 use crate::ui::colour::{Theme, Tone};
-use crate::ui::widgets::{Popup, draw_input, first_shown, put};
+use crate::ui::widgets::{Popup, draw_input, first_shown, put, wrap};
 
 /// A question.
 #[derive(Clone, Debug)]
@@ -29,6 +29,13 @@ pub enum PromptView<'a> {
         cursor: usize,
         /// What may be said or left out: "Enter without words gives no reason".
         hint: &'a str,
+    },
+    /// Answers by letter, which the lines name.
+    Answers {
+        /// The question.
+        title: &'a str,
+        /// What has to be known to answer it, and the answers, a line each.
+        lines: &'a [String],
     },
     /// Yes or no.
     YesNo {
@@ -75,18 +82,31 @@ pub fn draw(view: &PromptView<'_>, theme: &Theme, screen: Rect, buffer: &mut Buf
                 put(row, hint, theme.style(Tone::Faint), theme.ascii, buffer);
             }
         }
-        PromptView::YesNo { title, lines } => {
-            let widest = lines.iter().map(|line| line.width()).max().unwrap_or(0);
-            let popup = Popup {
-                title,
-                foot: "y yes, n no",
-                wanted: (widest.max(title.width() + 4).max(30) as u16, lines.len() as u16),
-            };
-            let Some(inner) = popup.draw(theme, screen, buffer) else { return };
-            for (line, row) in lines.iter().zip(inner.rows()) {
-                put(row, line, theme.style(Tone::Plain), theme.ascii, buffer);
-            }
+        PromptView::Answers { title, lines } => {
+            draw_lines(title, "", lines, theme, screen, buffer);
         }
+        PromptView::YesNo { title, lines } => {
+            draw_lines(title, "y yes, n no", lines, theme, screen, buffer);
+        }
+    }
+}
+
+fn draw_lines(
+    title: &str,
+    foot: &str,
+    lines: &[String],
+    theme: &Theme,
+    screen: Rect,
+    buffer: &mut Buffer,
+) {
+    let room = usize::from(screen.width.saturating_sub(6)).max(1);
+    let lines: Vec<String> = lines.iter().flat_map(|line| wrap(line, room)).collect();
+    let widest = lines.iter().map(|line| line.width()).max().unwrap_or(0);
+    let wanted = (widest.max(title.width() + 4).max(30) as u16, lines.len() as u16);
+    let popup = Popup { title, foot, wanted };
+    let Some(inner) = popup.draw(theme, screen, buffer) else { return };
+    for (line, row) in lines.iter().zip(inner.rows()) {
+        put(row, line, theme.style(Tone::Plain), theme.ascii, buffer);
     }
 }
 

@@ -9,6 +9,7 @@ use crate::ui::panes::command::{self, CommandView, Completion};
 use crate::ui::panes::help::{self, HelpView};
 use crate::ui::panes::messages::{self, MessagesView};
 use crate::ui::panes::prompt::{self, FlagChoice, PromptView};
+use crate::ui::signing;
 
 /// Draws the overlay over the screen; prompts of one line go to the command line.
 pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Buffer) {
@@ -33,9 +34,9 @@ pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Bu
         Overlay::Line(prompt) => draw_line(app, prompt, screen, command_line, buffer),
         Overlay::Flags(prompt) => draw_flags(app, prompt, screen, buffer),
         Overlay::SignOff => {
-            let lines = sign_off_lines(app);
+            let lines = signing::summary(app);
             let view =
-                PromptView::YesNo { title: "Sign off: was the rest looked at?", lines: &lines };
+                PromptView::Answers { title: "Sign off: was the rest looked at?", lines: &lines };
             prompt::draw(&view, theme, screen, buffer);
         }
         Overlay::LeaveAnyway => {
@@ -127,23 +128,6 @@ fn draw_flags(app: &App, flags: &FlagPrompt, screen: Rect, buffer: &mut Buffer) 
     let title = format!("{verb} {}{reason}", flags.selection.words);
     let view = PromptView::Flags { title: &title, choices: &choices, cursor: flags.cursor };
     prompt::draw(&view, &app.theme, screen, buffer);
-}
-
-fn sign_off_lines(app: &App) -> Vec<String> {
-    let Some(record) = app.bench().and_then(|bench| bench.record.open()) else {
-        return Vec::new();
-    };
-    let counts = record.counts();
-    vec![
-        format!(
-            "{} footprints: {} flagged, {} no flag",
-            counts.footprints, counts.flagged, counts.no_flag
-        ),
-        format!("{} not assessed", counts.not_assessed),
-        "y: those were looked at and may be used".to_owned(),
-        "n: those stay not assessed, and are not used".to_owned(),
-        "Esc: do not sign off".to_owned(),
-    ]
 }
 
 fn leave_lines(app: &App) -> Vec<String> {
