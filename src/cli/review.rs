@@ -23,7 +23,7 @@ pub struct Arguments {
     /// Letters and ASCII signs only
     #[arg(long)]
     ascii: bool,
-    /// Send as little as possible: no more than 256 colours, no synchronised frames
+    /// Send as little as possible: 16 levels of at most 256 colours, spectra when the cursor rests
     #[arg(long)]
     low_bandwidth: bool,
     #[command(flatten)]
@@ -56,6 +56,7 @@ mod on_screen {
     use crate::layers::Expression;
     use crate::tray::Tray;
     use crate::ui::colour::{Background, ColourDepth, ColourRequest, ColourSettings, Theme};
+    use crate::ui::keys::Action;
     use crate::ui::{self, App, Outside};
 
     /// What to use where the screen can't be shown.
@@ -73,6 +74,7 @@ mod on_screen {
         }
         let theme = theme(request, &arguments);
         let files = arguments.inputs.files()?;
+        let is_new = !arguments.campaign.exists();
         let campaign = Campaign::open_or_create(&arguments.campaign)?;
         surroundings::now()?;
         let outside = Outside {
@@ -83,15 +85,39 @@ mod on_screen {
             // The form of RADSIEVE_NOW was checked above.
             clock: Arc::new(|| surroundings::now().unwrap_or_else(|_| jiff::Timestamp::now())),
             keys: own_settings::keys()?,
-            first_layer: arguments.layer,
+            first_layer: arguments.layer.clone(),
         };
         let mut app = App::new(outside, theme, Tray::new(files));
-        app.synchronised = !arguments.low_bandwidth;
+        app.low_bandwidth = arguments.low_bandwidth;
+        app.welcome = welcome(&arguments, is_new, &app);
         let ended = ui::run(app)?;
         if let Some(unwritten) = &ended.unwritten {
             eprintln!("radsieve: {unwritten}");
         }
         Ok(if ended.code == 0 { Exit::Done } else { Exit::Signal(ended.code) })
+    }
+
+    /// What helps at the first look: that signs may be broken, else where the keys are found.
+    fn welcome(arguments: &Arguments, is_new: bool, app: &App) -> Option<String> {
+        let locale = ["LC_ALL", "LC_CTYPE", "LANG"]
+            .into_iter()
+            .find_map(|name| env::var(name).ok().filter(|value| !value.is_empty()))
+            .unwrap_or_default();
+        if !arguments.ascii && !surroundings::is_utf8(&locale) {
+            return Some(format!(
+                "the locale is no UTF-8 one ({}): where signs look broken, use --ascii",
+                if locale.is_empty() { "none is set" } else { &locale }
+            ));
+        }
+        let hint = |action| app.keymap.hint(action);
+        is_new.then(|| {
+            format!(
+                "new here? {} shows the keys, 1 to 7 reach the panes, {} takes commands, {} leaves",
+                hint(Action::Help),
+                hint(Action::Command),
+                hint(Action::Quit),
+            )
+        })
     }
 
     fn theme(request: ColourRequest, arguments: &Arguments) -> Theme {

@@ -42,6 +42,12 @@ pub fn now() -> Result<Timestamp, UsageError> {
     }
 }
 
+/// Whether the value of a locale variable names UTF-8 for its characters, in any spelling.
+pub fn is_utf8(locale: &str) -> bool {
+    let name = locale.to_ascii_lowercase();
+    name.contains("utf-8") || name.contains("utf8")
+}
+
 /// Makes HDF5 write without locks. A file is written under a name of its own before it is moved into
 /// place, so nobody else writes it; many shared file systems have no locks and would refuse; and a
 /// reader that is started meanwhile would inherit the lock.
@@ -52,5 +58,21 @@ pub fn write_without_file_locks() {
         // SAFETY: called first of all in `main`, when no other thread runs that could read the
         // environment. The library has no other switch that netCDF hands through.
         unsafe { env::set_var(LOCKING, "FALSE") };
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    #[test]
+    fn utf8_is_known_in_its_spellings() {
+        for (locale, is) in [
+            ("en_GB.UTF-8", true),
+            ("C.utf8", true),
+            ("C", false),
+            ("", false),
+            ("de_DE@euro", false),
+        ] {
+            assert_eq!(super::is_utf8(locale), is, "{locale}");
+        }
     }
 }

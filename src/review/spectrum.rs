@@ -43,25 +43,48 @@ impl Review {
         self.read_spectrum(footprint).ok()
     }
 
+    /// What a model calculated for a footprint under a clear sky, if anything was for any band; a band
+    /// without it is missing.
+    ///
+    /// # Errors
+    /// The file can't be read.
+    pub fn calculated_spectrum(&self, footprint: usize) -> Result<Option<Spectrum>, GranuleError> {
+        let bands = 0..self.granule().bands().len();
+        if !bands.clone().any(|band| self.granule().calculated(band).is_some()) {
+            return Ok(None);
+        }
+        let bands = bands.map(|band| {
+            let missing = || vec![f64::NAN; self.granule().bands()[band].axis.wavenumbers().len()];
+            let found = self.granule().calculated_clear(band, footprint..footprint + 1)?;
+            Ok(self.in_both(band, found.unwrap_or_else(missing)))
+        });
+        Ok(Some(Spectrum { footprint, bands: bands.collect::<Result<_, GranuleError>>()? }))
+    }
+
     /// The spectrum of a footprint: from memory, or from the file before everything else that is
     /// read.
     ///
     /// # Errors
     /// The file can't be read.
     pub fn read_spectrum(&self, footprint: usize) -> Result<Spectrum, GranuleError> {
-        let bands = self.granule().bands().iter().enumerate().map(|(number, band)| {
-            let values = self.granule().read_spectrum(number, footprint)?;
-            Ok(match band.quantity {
-                Quantity::Radiance(_) => {
-                    BandSpectrum::of_radiances(band.axis.wavenumbers(), values)
-                }
-                Quantity::BrightnessTemperature(_) => {
-                    let pairs = band.axis.wavenumbers().iter().zip(&values);
-                    let radiances = pairs.map(|(at, value)| planck(*at, *value)).collect();
-                    BandSpectrum { radiances, temperatures: values }
-                }
-            })
+        let bands = 0..self.granule().bands().len();
+        let bands = bands.map(|band| {
+            let values = self.granule().read_spectrum(band, footprint)?;
+            Ok(self.in_both(band, values))
         });
         Ok(Spectrum { footprint, bands: bands.collect::<Result<_, GranuleError>>()? })
+    }
+
+    /// Values in a band's own quantity, in both.
+    fn in_both(&self, band: usize, values: Vec<f64>) -> BandSpectrum {
+        let band = &self.granule().bands()[band];
+        match band.quantity {
+            Quantity::Radiance(_) => BandSpectrum::of_radiances(band.axis.wavenumbers(), values),
+            Quantity::BrightnessTemperature(_) => {
+                let pairs = band.axis.wavenumbers().iter().zip(&values);
+                let radiances = pairs.map(|(at, value)| planck(*at, *value)).collect();
+                BandSpectrum { radiances, temperatures: values }
+            }
+        }
     }
 }

@@ -40,10 +40,10 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Spectrum { request, found } => spectrum(app, request, found),
         Answer::Pinned { request, found } => pinned(app, request, found),
         Answer::Trace { request, found } => tracing::take(app, request, found),
-        Answer::Noise { request, footprint, found } => {
-            if let Some(bench) = awaited(app, |bench| bench.awaited.noise == request) {
-                bench.awaited.noise = 0;
-                bench.look.noise = Some((footprint, found));
+        Answer::Beside { request, found } => {
+            if let Some(bench) = awaited(app, |bench| bench.awaited.beside == request) {
+                bench.awaited.beside = 0;
+                bench.look.beside = Some(found);
             }
             Vec::new()
         }
@@ -95,6 +95,10 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     match problems {
         // Why files before this one were passed over has to stay to be read.
         _ if app.message.1 == Tone::Bad => {}
+        _ if app.welcome.is_some() => {
+            let welcome = app.welcome.take().unwrap_or_default();
+            app.say(welcome);
+        }
         _ if !app.keymap.problems().is_empty() => {
             let problem = app.keymap.problems().join("; ");
             app.warn(problem);

@@ -115,8 +115,13 @@ pub struct App {
     pub redraw: bool,
     /// The terminal has to be taken over anew.
     pub renew: bool,
-    /// Whether frames are marked as such for the terminal, so that it shows none half-way.
-    pub synchronised: bool,
+    /// As little as possible is sent to the terminal.
+    pub low_bandwidth: bool,
+    /// The cursor rests: panes that tell of the footprint under it are drawn. Where little is to be
+    /// sent they wait for it.
+    pub rested: bool,
+    /// What is said once the first granule is there.
+    pub welcome: Option<String>,
     /// The program is to stop to the shell.
     pub suspend: bool,
     requests: u64,
@@ -151,7 +156,9 @@ impl App {
             changed: true,
             redraw: false,
             renew: false,
-            synchronised: true,
+            low_bandwidth: false,
+            rested: true,
+            welcome: None,
             suspend: false,
             requests: 0,
         }

@@ -172,8 +172,8 @@ pub struct Awaited {
     pub quality: u64,
     /// Finding what the Trace shows beside the spectrum.
     pub trace: u64,
-    /// Reading the noise under the cursor.
-    pub noise: u64,
+    /// Reading what stands beside the spectrum under the cursor.
+    pub beside: u64,
     /// Running the tests.
     pub screen: u64,
     /// Finding footprints to select.

@@ -2,6 +2,7 @@
 
 use ratatui::Frame;
 use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
 
 use super::app::App;
 use super::overlay::Overlay;
@@ -11,6 +12,12 @@ use super::views;
 
 /// Draws the whole screen.
 pub fn draw(app: &App, frame: &mut Frame<'_>) {
+    draw_over(app, None, frame);
+}
+
+/// Draws the screen; while the cursor does not rest, panes that tell of the footprint under it keep
+/// what they showed the last time.
+pub fn draw_over(app: &App, last: Option<&Buffer>, frame: &mut Frame<'_>) {
     let screen = frame.area();
     let Some(layout) = ScreenLayout::of(screen, &app.panes) else {
         panes::draw_too_small(screen, frame.buffer_mut());
@@ -18,10 +25,23 @@ pub fn draw(app: &App, frame: &mut Frame<'_>) {
     };
     let buffer = frame.buffer_mut();
     for (pane, area) in layout.panes() {
-        views::draw_pane(app, pane, area, buffer);
+        let kept = last.filter(|last| !app.rested && last.area == screen && pane.waits());
+        match kept {
+            Some(last) => keep(last, area, buffer),
+            None => views::draw_pane(app, pane, area, buffer),
+        }
     }
     draw_lines(app, &layout, buffer);
     views::draw_overlay(app, screen, layout.command, buffer);
+}
+
+/// Puts what an area showed the last time there again.
+fn keep(last: &Buffer, area: Rect, buffer: &mut Buffer) {
+    for place in area.positions() {
+        if let (Some(cell), Some(before)) = (buffer.cell_mut(place), last.cell(place)) {
+            cell.clone_from(before);
+        }
+    }
 }
 
 /// The status line, and the hints where no line is being typed.

@@ -15,6 +15,8 @@ pub enum Event {
     Answer(Answer),
     /// The ledger's writer may have reported.
     LedgerMoved,
+    /// The cursor has not moved for a moment.
+    Rested,
     /// A while has passed without anything else.
     Quiet,
     /// Stop to the shell, as Ctrl-Z asks for.

@@ -13,7 +13,7 @@ use crate::tray::Standing;
 use super::bench::Quality;
 use super::place::Place;
 use super::selecting::{Found, Join};
-use super::trace_look::{NoiseOf, ReferenceFile};
+use super::trace_look::{Beside, ReferenceFile};
 
 /// Something to be done. Each carries the number of its request, which the answer repeats: an
 /// answer whose number is no longer waited for is dropped.
@@ -120,8 +120,8 @@ pub enum Job {
         /// What is asked for.
         ask: TraceAsk,
     },
-    /// Read the noise of a footprint's channels.
-    Noise {
+    /// Read what the Trace shows beside a footprint's spectrum: noise, calculated spectrum.
+    Beside {
         /// The request.
         request: u64,
         /// The granule.
@@ -275,14 +275,12 @@ pub enum Answer {
         /// What was found.
         found: Result<TraceFound, String>,
     },
-    /// The noise of a footprint's channels was read.
-    Noise {
+    /// What stands beside a footprint's spectrum was read.
+    Beside {
         /// The request.
         request: u64,
-        /// The footprint.
-        footprint: usize,
-        /// The noise, band by band.
-        found: NoiseOf,
+        /// What was found.
+        found: Beside,
     },
     /// The footprints that are to be selected were found.
     Selected {

@@ -227,7 +227,7 @@ pub fn spectrum(app: &mut App) -> Vec<Job> {
         let review = Arc::clone(&bench.review);
         jobs.push(Job::Spectrum { request, review, footprint: bench.cursor });
     }
-    jobs.extend(tracing::noise(app));
+    jobs.extend(tracing::beside(app));
     jobs
 }
 

@@ -47,6 +47,7 @@ pub fn go(app: &mut App, footprint: usize) -> Vec<Job> {
     if !moved {
         return Vec::new();
     }
+    app.rested = !app.low_bandwidth;
     // What was said about another footprint makes room for what is under the cursor now.
     if app.message.1 != Tone::Bad {
         app.say("");
@@ -125,6 +126,18 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
                 Some(wavenumber) => looking::go_to_channel(app, wavenumber),
                 None => Vec::new(),
             }
+        }
+        (Button::WheelUp | Button::WheelDown, Pane::Tray) => {
+            let action = if mouse.button == Button::WheelUp { Action::Up } else { Action::Down };
+            app.panes.focus_on(Pane::Tray);
+            in_tray(app, action);
+            Vec::new()
+        }
+        (Button::WheelUp | Button::WheelDown, Pane::Evidence) => {
+            let action =
+                if mouse.button == Button::WheelUp { Action::PageUp } else { Action::PageDown };
+            in_evidence(app, action);
+            Vec::new()
         }
         (Button::Press | Button::Drag, Pane::Strip) => {
             app.panes.focus_on(Pane::Strip);

@@ -6,7 +6,7 @@ use std::sync::mpsc::{Receiver, RecvTimeoutError, channel};
 use std::time::Duration;
 
 use super::app::App;
-use super::draw::draw;
+use super::draw::{draw, draw_over};
 use super::event::{Ending, Event};
 use super::jobs::Answer;
 use super::runner::Runner;
@@ -18,6 +18,9 @@ use super::{keyboard, signals, terminal, turning, work};
 const LEDGER_PAUSE: Duration = Duration::from_millis(15);
 /// After so long without any event the ledgers are read once more: others may have decided.
 const QUIET: Duration = Duration::from_secs(10);
+/// Where little is to be sent the cursor rests after so long without an event: longer than a key that
+/// is held down takes to come again.
+const REST: Duration = Duration::from_millis(150);
 /// How long the last decisions may take on the way out after a signal.
 const LAST_WRITES: Duration = Duration::from_secs(4);
 
@@ -38,7 +41,7 @@ pub struct Ended {
 pub fn run(mut app: App) -> io::Result<Ended> {
     let (sender, events) = channel();
     signals::listen(sender.clone())?;
-    let mut screen = Screen::take(app.mouse, app.synchronised)?;
+    let mut screen = Screen::take(app.mouse, !app.low_bandwidth)?;
     keyboard::listen(sender.clone())?;
     let mut runner = Runner::new(Arc::clone(&app.outside), sender);
     for job in turning::start(&mut app) {
@@ -62,9 +65,10 @@ pub fn run(mut app: App) -> io::Result<Ended> {
 /// Waits for the next event. While decisions are pending the writer may have news at any moment.
 fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
     let writing = app.pending() > 0 && (app.write_failure().is_none() || app.leaving);
-    let (pause, passed) = match writing {
-        true => (LEDGER_PAUSE, Event::LedgerMoved),
-        false => (QUIET, Event::Quiet),
+    let (pause, passed) = match (app.rested, writing) {
+        (false, _) => (REST, Event::Rested),
+        (true, true) => (LEDGER_PAUSE, Event::LedgerMoved),
+        (true, false) => (QUIET, Event::Quiet),
     };
     match events.recv_timeout(pause) {
         Ok(event) => Some(event),
@@ -110,6 +114,9 @@ fn show(app: &mut App, screen: &mut Screen) -> io::Result<()> {
         return Ok(());
     }
     app.lay_out(screen.size()?);
+    if app.low_bandwidth {
+        return screen.draw_kept(|frame, last| draw_over(app, last, frame));
+    }
     screen.draw(|frame| draw(app, frame))
 }
 

@@ -31,8 +31,8 @@ enum Lane {
     Screen,
     /// What the Trace shows beside the spectrum, likewise.
     Trace,
-    /// Noise, likewise.
-    Noise,
+    /// What stands beside a spectrum, likewise.
+    Beside,
     /// Everything in its turn.
     InTurn,
     /// A thread of its own at once: may hang on a file until the reader's limit.
@@ -45,7 +45,7 @@ fn lane_of(job: &Job) -> Lane {
         Job::Indices { .. } => Lane::Indices,
         Job::Spectrum { .. } => Lane::Spectrum,
         Job::Trace { .. } => Lane::Trace,
-        Job::Noise { .. } => Lane::Noise,
+        Job::Beside { .. } => Lane::Beside,
         Job::Screen { .. } => Lane::Screen,
         Job::Standing { .. } => Lane::InTurn,
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {

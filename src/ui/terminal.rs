@@ -11,6 +11,7 @@ use crossterm::terminal::{
 };
 use crossterm::{cursor, execute, queue, terminal};
 use ratatui::backend::CrosstermBackend;
+use ratatui::buffer::Buffer;
 use ratatui::layout::{Rect, Size};
 use ratatui::{Frame, Terminal, TerminalOptions, Viewport};
 
@@ -34,6 +35,8 @@ static PANIC_HOOK: Once = Once::new();
 pub struct Screen {
     terminal: Terminal<CrosstermBackend<Writer>>,
     synchronised: bool,
+    /// What was drawn last, where it is kept.
+    last: Option<Buffer>,
 }
 
 /// Drawn on where the terminal does not know its size (batch systems start shells without one).
@@ -53,7 +56,7 @@ impl Screen {
         install_panic_hook();
         TAKEN.store(true, Ordering::SeqCst);
         match start(mouse) {
-            Ok(terminal) => Ok(Screen { terminal, synchronised }),
+            Ok(terminal) => Ok(Screen { terminal, synchronised, last: None }),
             Err(error) => {
                 give_back();
                 Err(error)
@@ -69,6 +72,7 @@ impl Screen {
         give_back();
         TAKEN.store(true, Ordering::SeqCst);
         self.terminal = start(mouse)?;
+        self.last = None;
         Ok(())
     }
 
@@ -93,6 +97,20 @@ impl Screen {
         if self.synchronised {
             queue!(self.terminal.backend_mut(), EndSynchronizedUpdate)?;
         }
+        io::Write::flush(self.terminal.backend_mut())
+    }
+
+    /// The same with what was drawn the last time, of which parts may be kept.
+    ///
+    /// # Errors
+    /// The terminal has gone away.
+    pub fn draw_kept(
+        &mut self,
+        draw: impl FnOnce(&mut Frame<'_>, Option<&Buffer>),
+    ) -> io::Result<()> {
+        let last = self.last.take();
+        let drawn = self.terminal.draw(|frame| draw(frame, last.as_ref()))?;
+        self.last = Some(drawn.buffer.clone());
         io::Write::flush(self.terminal.backend_mut())
     }
 

@@ -1,6 +1,6 @@
 //! What the Trace shows beside the spectrum under the cursor, and in which quantity.
 
-use crate::review::{BandSpectrum, ManySpectra};
+use crate::review::{BandSpectrum, ManySpectra, Spectrum};
 
 use super::bench::Bench;
 
@@ -50,6 +50,8 @@ pub enum Reference {
     Pin(char),
     /// The spectrum out of a file.
     File,
+    /// What a model calculated for each footprint under a clear sky.
+    Calculated,
 }
 
 /// A spectrum out of a file.
@@ -70,9 +72,17 @@ pub struct Envelope {
     pub spectra: ManySpectra,
 }
 
-/// The noise of a footprint's channels, band by band: a standard deviation in the band's own
-/// quantity; none where the file gives none.
-pub type NoiseOf = Vec<Option<Vec<f64>>>;
+/// What stands beside a footprint's spectrum.
+#[derive(Debug)]
+pub struct Beside {
+    /// The footprint.
+    pub footprint: usize,
+    /// The noise of its channels, band by band: a standard deviation in the band's own quantity; none
+    /// where the file gives none.
+    pub noise: Vec<Option<Vec<f64>>>,
+    /// What a model calculated for it, if anything.
+    pub calculated: Option<Spectrum>,
+}
 
 /// All of that.
 #[derive(Debug, Default)]
@@ -91,8 +101,8 @@ pub struct TraceLook {
     pub planck: Vec<f64>,
     /// Whether noise bars are shown.
     pub bars: bool,
-    /// The noise of a footprint.
-    pub noise: Option<(usize, NoiseOf)>,
+    /// What stands beside a spectrum: that under the cursor, once it is there.
+    pub beside: Option<Beside>,
     /// The wavenumbers that the layer on show is made from, cm-1.
     pub used: Vec<f64>,
 }
@@ -111,6 +121,10 @@ impl Bench {
                 pin.spectrum.as_ref().map(|spectrum| spectrum.bands.as_slice())
             }
             Reference::File => look.file.as_ref().map(|file| file.bands.as_slice()),
+            Reference::Calculated => {
+                let beside = look.beside.as_ref().filter(|one| one.footprint == self.cursor)?;
+                beside.calculated.as_ref().map(|spectrum| spectrum.bands.as_slice())
+            }
         }
     }
 
@@ -119,6 +133,7 @@ impl Bench {
         let mut all = vec![Reference::Mean];
         all.extend(self.pins.iter().map(|pin| Reference::Pin(pin.letter)));
         all.extend(self.look.file.iter().map(|_| Reference::File));
+        all.extend(self.has_calculated().then_some(Reference::Calculated));
         match self.look.reference {
             None => all.first().copied(),
             Some(here) => {
@@ -128,11 +143,23 @@ impl Bench {
         }
     }
 
+    /// Whether a model's spectra are there for any band.
+    pub fn has_calculated(&self) -> bool {
+        let granule = self.review.granule();
+        (0..granule.bands().len()).any(|band| granule.calculated(band).is_some())
+    }
+
+    /// Whether the file gives the noise of any band.
+    pub fn has_noise(&self) -> bool {
+        self.review.granule().bands().iter().any(|band| band.noise.is_some())
+    }
+
     /// The reference in words.
     pub fn reference_words(&self) -> Option<String> {
         Some(match self.look.reference? {
             Reference::Mean => "the granule's mean".to_owned(),
             Reference::Pin(letter) => format!("pin {letter}"),
+            Reference::Calculated => "the calculated clear sky".to_owned(),
             Reference::File => {
                 self.look.file.as_ref().map_or_else(String::new, |file| file.name.clone())
             }

@@ -63,7 +63,7 @@ fn next_reference(app: &mut App) -> Vec<Job> {
         return ask(app, TraceAsk::Mean);
     }
     refer_to(app, next);
-    Vec::new()
+    beside(app)
 }
 
 fn refer_to(app: &mut App, reference: Option<Reference>) {
@@ -99,29 +99,29 @@ fn envelope(app: &mut App) -> Vec<Job> {
 fn bars(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     bench.look.bars = !bench.look.bars;
-    let given = bench.review.granule().bands().iter().any(|band| band.noise.is_some());
-    let words = match (bench.look.bars, given) {
+    let words = match (bench.look.bars, bench.has_noise()) {
         (true, true) => "noise bars: one standard deviation, as the file gives it",
         (true, false) => "the file gives no noise",
         (false, _) => "no noise bars",
     };
     app.say(words);
-    noise(app)
+    beside(app)
 }
 
-/// Asks for the noise under the cursor, where bars of it are shown and it is not known.
-pub fn noise(app: &mut App) -> Vec<Job> {
+/// Asks for what stands beside the spectrum under the cursor, where it is shown and not known.
+pub fn beside(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return Vec::new() };
-    let known = bench.look.noise.as_ref().is_some_and(|(of, _)| *of == bench.cursor);
-    let given = bench.review.granule().bands().iter().any(|band| band.noise.is_some());
-    if !bench.look.bars || known || !given {
+    let known = bench.look.beside.as_ref().is_some_and(|one| one.footprint == bench.cursor);
+    let bars = bench.look.bars && bench.has_noise();
+    let calculated = bench.look.reference == Some(Reference::Calculated);
+    if known || !(bars || calculated) {
         return Vec::new();
     }
     let footprint = bench.cursor;
     let request = app.request();
     let Some(bench) = app.bench_mut() else { return Vec::new() };
-    bench.awaited.noise = request;
-    vec![Job::Noise { request, review: Arc::clone(&bench.review), footprint }]
+    bench.awaited.beside = request;
+    vec![Job::Beside { request, review: Arc::clone(&bench.review), footprint }]
 }
 
 fn still_read(app: &mut App) -> Vec<Job> {

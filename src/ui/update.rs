@@ -20,6 +20,10 @@ pub fn update(app: &mut App, event: Event) -> Vec<Job> {
         Event::Input(Input::Mouse(mouse)) => click(app, mouse),
         Event::Answer(answer) => answers::take(app, answer),
         Event::LedgerMoved => turning::ledger_moved(app),
+        Event::Rested => {
+            app.rested = true;
+            Vec::new()
+        }
         Event::Quiet => turning::look_for_others(app),
         Event::Suspend => {
             app.suspend = true;

@@ -16,7 +16,7 @@ use super::bench::Quality;
 use super::jobs::{Answer, Job, TraceAsk, TraceFound};
 use super::place;
 use super::selecting::where_holds;
-use super::trace_look::ReferenceFile;
+use super::trace_look::{Beside, ReferenceFile};
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
 const PROGRESS_PAUSE: Duration = Duration::from_millis(80);
@@ -76,12 +76,8 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         Job::Trace { request, review, ask } => {
             send(Answer::Trace { request: *request, found: trace(review, ask) });
         }
-        Job::Noise { request, review, footprint } => {
-            let bands = 0..review.granule().bands().len();
-            // Noise that can't be read is none: the spectrum stands without it.
-            let noise = |band| review.granule().noise(band, *footprint).ok().flatten();
-            let found = bands.map(noise).collect();
-            send(Answer::Noise { request: *request, footprint: *footprint, found });
+        Job::Beside { request, review, footprint } => {
+            send(Answer::Beside { request: *request, found: beside(review, *footprint) });
         }
         Job::Select { request, review, join, text, cancel } => {
             let found = where_holds(review, text, cancel);
@@ -117,9 +113,17 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Select { request, join, .. } => {
             Answer::Selected { request: *request, join: *join, found: Err(why()) }
         }
-        Job::Reread { .. } | Job::Keep { .. } | Job::Noise { .. } => return None,
+        Job::Reread { .. } | Job::Keep { .. } | Job::Beside { .. } => return None,
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
+}
+
+/// What cannot be read is none: the spectrum stands without it.
+fn beside(review: &Review, footprint: usize) -> Beside {
+    let bands = 0..review.granule().bands().len();
+    let noise = |band| review.granule().noise(band, footprint).ok().flatten();
+    let calculated = review.calculated_spectrum(footprint).ok().flatten();
+    Beside { footprint, noise: bands.map(noise).collect(), calculated }
 }
 
 /// A spectrum in a file is a few thousand lines; a longer file is a mistake.

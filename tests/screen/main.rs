@@ -4,6 +4,7 @@
 #[path = "../program/hostile/hanging_granule.rs"]
 mod hanging_granule;
 
+mod budget;
 mod care;
 mod main_job;
 mod terminal;

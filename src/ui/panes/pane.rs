@@ -62,6 +62,11 @@ impl Pane {
         ROWS[(here + if forward { 1 } else { count - 1 }) % count].pane
     }
 
+    /// Whether it waits for the cursor to rest where little is to be sent.
+    pub fn waits(self) -> bool {
+        !matches!(self, Pane::Tray | Pane::Field)
+    }
+
     /// The part of the screen it lies in, by how much room there is: 0 little, 2 most.
     pub(super) fn part(self, room: usize) -> Option<Part> {
         let row = ROWS.iter().find(|row| row.pane == self)?;

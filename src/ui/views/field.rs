@@ -62,6 +62,7 @@ impl FieldParts {
             signs: &self.signs,
             selected: &self.selected,
             scale: bench.map_or_else(Scale::default, |bench| bench.layer.scale),
+            coarse: app.low_bandwidth,
             cursor: bench.filter(|bench| bench.marks).map(|bench| bench.cursor),
             corners: bench.and_then(corners),
             polygon: bench.map_or(&[], polygon),

@@ -98,6 +98,7 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
     } else {
         &[
             (Action::Help, "help"),
+            (Action::NextPane, "or 1-7 pane"),
             (Action::Command, "command"),
             (Action::Flag, "flag"),
             (Action::Box, "box"),
@@ -106,7 +107,6 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
             (Action::NextLayer, "layer"),
             (Action::SignOff, "sign off"),
             (Action::NextGranule, "next"),
-            (Action::NextPane, "pane"),
             (Action::Quit, "leave"),
         ]
     };

@@ -88,14 +88,17 @@ fn window(bench: &Bench, bands: &[BandSpectrum]) -> f64 {
 
 /// One standard deviation of noise below and above each value at the cursor.
 pub fn bars(bench: &Bench) -> Vec<Bar> {
-    let noise = bench.look.noise.as_ref().filter(|(of, _)| bench.look.bars && *of == bench.cursor);
-    let (Some((_, noise)), Some(spectrum)) = (noise, &bench.spectrum) else { return Vec::new() };
+    let beside = bench.look.beside.as_ref().filter(|one| one.footprint == bench.cursor);
+    let (Some(beside), Some(spectrum)) = (beside.filter(|_| bench.look.bars), &bench.spectrum)
+    else {
+        return Vec::new();
+    };
     let shown = in_file_order(bench, &spectrum.bands);
     let window = window(bench, &spectrum.bands);
     let mut bars = Vec::new();
     for (number, band) in bench.review.granule().bands().iter().enumerate() {
         let (Some(Some(noise)), Some(values), Some(here)) =
-            (noise.get(number), shown.get(number), spectrum.bands.get(number))
+            (beside.noise.get(number), shown.get(number), spectrum.bands.get(number))
         else {
             continue;
         };

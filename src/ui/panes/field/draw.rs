@@ -82,6 +82,7 @@ mod tests {
             signs: &SIGNS,
             selected: &[],
             scale: Scale { palette: Palette::Viridis, low: 200.0, high: 300.0 },
+            coarse: false,
             cursor: None,
             corners: None,
             polygon: &[],

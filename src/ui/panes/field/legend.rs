@@ -33,7 +33,8 @@ pub(super) fn draw(view: &FieldView<'_>, theme: &Theme, line: Rect, buffer: &mut
         return;
     }
     let used = put(line, &low, plain, theme.ascii, buffer);
-    let bar = Bar { area: Rect { x: line.x + used + 1, width, ..line }, scale: view.scale, theme };
+    let area = Rect { x: line.x + used + 1, width, ..line };
+    let bar = Bar { area, scale: view.scale, coarse: view.coarse, theme };
     bar.draw(buffer);
     bar.draw_numbers(buffer);
     let value = view.cursor.and_then(|footprint| view.values.get(footprint)).copied();
@@ -48,12 +49,14 @@ pub(super) fn draw(view: &FieldView<'_>, theme: &Theme, line: Rect, buffer: &mut
 struct Bar<'a> {
     area: Rect,
     scale: Scale,
+    coarse: bool,
     theme: &'a Theme,
 }
 
 impl Bar<'_> {
     fn level(&self, column: u16) -> u8 {
-        Scale::level_at((f64::from(column) + 0.5) / f64::from(self.area.width))
+        let level = Scale::level_at((f64::from(column) + 0.5) / f64::from(self.area.width));
+        if self.coarse { level & !1 } else { level }
     }
 
     fn draw(&self, buffer: &mut Buffer) {

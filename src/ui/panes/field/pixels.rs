@@ -29,7 +29,10 @@ impl Dot {
             return Self::Pending;
         }
         let value = view.values.get(footprint).copied().unwrap_or(f64::NAN);
-        view.scale.level(value).map_or(Self::Missing, Self::Level)
+        let level = view.scale.level(value);
+        level.map_or(Self::Missing, |level| {
+            Self::Level(if view.coarse { level & !1 } else { level })
+        })
     }
 
     fn colour(self, palette: Palette, depth: ColourDepth) -> Option<Color> {

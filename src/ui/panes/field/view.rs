@@ -28,6 +28,8 @@ pub struct FieldView<'a> {
     pub selected: &'a [bool],
     /// How values become colours.
     pub scale: Scale,
+    /// Half of the levels are enough: fewer colours change from cell to cell.
+    pub coarse: bool,
     /// The footprint under the cursor.
     pub cursor: Option<usize>,
     /// Opposite corners of a box being drawn, as footprints.

@@ -2,6 +2,7 @@
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
+use ratatui::style::Style;
 use unicode_width::UnicodeWidthStr;
 
 use super::{Group, StripView};
@@ -16,6 +17,14 @@ struct Plot {
     low: f64,
     high: f64,
     values: Vec<(f64, String)>,
+}
+
+/// How a span is filled: a pattern, so that what lies in front of it stays readable.
+struct Fill {
+    sign: char,
+    style: Style,
+    /// Every so manieth dot of a column is set.
+    every: usize,
 }
 
 /// Draws the Strip: in each group the range from lowest to highest, the quartiles within it, and the
@@ -37,12 +46,10 @@ pub fn draw(view: &StripView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer
         return;
     };
     plot.draw_axes(view, theme, buffer);
-    plot.draw_spans(view, '.', theme.style(Tone::Faint), theme, buffer, |group| {
-        (group.lowest, group.highest)
-    });
-    plot.draw_spans(view, ':', theme.curve(Some(0)), theme, buffer, |group| {
-        (group.lower, group.upper)
-    });
+    let all = Fill { sign: '.', style: theme.style(Tone::Faint), every: 4 };
+    plot.draw_spans(view, &all, theme, buffer, |group| (group.lowest, group.highest));
+    let half = Fill { sign: ':', style: theme.curve(Some(0)), every: 2 };
+    plot.draw_spans(view, &half, theme, buffer, |group| (group.lower, group.upper));
     plot.draw_medians(view, theme, buffer);
     if let Some(column) = view.cursor.and_then(|group| plot.column_of(group, view.groups.len())) {
         plot.draw_cursor(column, theme, buffer);
@@ -118,8 +125,7 @@ impl Plot {
     fn draw_spans(
         &self,
         view: &StripView<'_>,
-        sign: char,
-        style: ratatui::style::Style,
+        fill: &Fill,
         theme: &Theme,
         buffer: &mut Buffer,
         span: impl Fn(&Group) -> (f64, f64),
@@ -131,10 +137,10 @@ impl Plot {
             let (low, high) = span(group);
             let (top, bottom) = (self.row_of(high, rows), self.row_of(low, rows));
             for column in Self::dots_of(number, view.groups.len(), columns) {
-                canvas.column(column, top, bottom);
+                canvas.shade(column, top, bottom, if theme.ascii { 1 } else { fill.every });
             }
         }
-        canvas.draw(sign, style, buffer);
+        canvas.draw(fill.sign, fill.style, buffer);
     }
 
     fn draw_medians(&self, view: &StripView<'_>, theme: &Theme, buffer: &mut Buffer) {

@@ -73,7 +73,7 @@ fn draw_between(label: &str, extent: Rect, plot: &Plot, theme: &Theme, buffer: &
 }
 
 /// Whether nothing stands in a place nor touches it.
-fn is_free(place: Rect, buffer: &Buffer) -> bool {
+pub(super) fn is_free(place: Rect, buffer: &Buffer) -> bool {
     (place.x.saturating_sub(1)..=place.right()).all(|x| {
         let Some(cell) = buffer.cell((x, place.y)) else { return true };
         let beside = x < place.x || x >= place.right();

@@ -6,6 +6,7 @@ use ratatui::layout::Rect;
 use ratatui::style::Style;
 use unicode_width::UnicodeWidthStr;
 
+use super::bands::is_free;
 use super::envelope::{Span, envelope};
 use super::plot::Plot;
 use super::{Area, Guide, Segment, TraceView};
@@ -18,12 +19,8 @@ pub(super) fn draw(view: &TraceView<'_>, plot: &Plot, theme: &Theme, buffer: &mu
         draw_area(area, plot, theme, buffer);
     }
     draw_line(view.median, '-', theme.curve(Some(INNER)), plot, theme, buffer);
-    let mut taken = Vec::new();
     for guide in view.guides {
         draw_line(&guide.segments, '.', theme.style(Tone::Faint), plot, theme, buffer);
-    }
-    for guide in view.guides {
-        label(guide, plot, &mut taken, theme, buffer);
     }
 }
 
@@ -34,6 +31,9 @@ const INNER: usize = 4;
 pub(super) fn draw_over(view: &TraceView<'_>, plot: &Plot, theme: &Theme, buffer: &mut Buffer) {
     draw_bars(view, plot, theme, buffer);
     draw_marks(view, plot, theme, buffer);
+    for guide in view.guides {
+        label(guide, plot, theme, buffer);
+    }
 }
 
 /// Fills an area with a pattern of dots, so that curves in it stay readable.
@@ -90,33 +90,27 @@ fn draw_line(
     canvas.draw(sign, style, buffer);
 }
 
-/// Writes what a guide is on its highest part, where no other label stands.
-fn label(
-    guide: &Guide<'_>,
-    plot: &Plot,
-    taken: &mut Vec<Rect>,
-    theme: &Theme,
-    buffer: &mut Buffer,
-) {
+/// Writes what a guide is above its highest part that has room for it.
+fn label(guide: &Guide<'_>, plot: &Plot, theme: &Theme, buffer: &mut Buffer) {
     let width = guide.label.width() as u16;
     let (columns, rows) = (usize::from(plot.area.width), usize::from(plot.area.height));
     let mut places: Vec<(u16, u16)> = Vec::new();
     for segment in &guide.segments {
         for (column, span) in envelope(segment, plot.x, columns).into_iter().enumerate() {
             let row = rows_of(span, plot, rows).filter(|_| span.1 <= plot.y.1);
-            places.extend(row.map(|(top, _)| (top as u16, column as u16)));
+            places.extend(
+                row.and_then(|(top, _)| Some(((top as u16).checked_sub(1)?, column as u16))),
+            );
         }
     }
     places.sort_unstable();
     let free = places.into_iter().find_map(|(row, column)| {
         let x = plot.area.x + column.min(plot.area.width.checked_sub(width)?);
         let place = Rect { x, y: plot.area.y + row, width, height: 1 };
-        let wider = Rect { x: x.saturating_sub(1), width: width + 2, ..place };
-        (!taken.iter().any(|other| other.intersects(wider))).then_some(place)
+        is_free(place, buffer).then_some(place)
     });
     if let Some(place) = free {
         put(place, guide.label, theme.style(Tone::Plain), theme.ascii, buffer);
-        taken.push(place);
     }
 }
 
@@ -200,14 +194,18 @@ mod tests {
     }
 
     #[test]
-    fn labels_of_guides_do_not_collide() {
+    fn labels_of_guides_stand_free_or_not_at_all() {
         let guides = [
-            Guide { label: "280 K", segments: level(&[290.0; 2]) },
-            Guide { label: "290 K", segments: level(&[291.0; 2]) },
+            Guide { label: "270 K", segments: level(&[270.0; 2]) },
+            Guide { label: "271 K", segments: level(&[271.0; 2]) },
+            Guide { label: "230 K", segments: level(&[230.0; 2]) },
         ];
+        let curves = [Curve { letter: None, segments: level(&[245.0; 2]) }];
         let mut view = view();
-        view.guides = &guides;
-        assert_eq!(drawn(&view)[0], "280 K.290 K..............");
+        (view.guides, view.curves) = (&guides, &curves);
+        let rows = drawn(&view);
+        assert_eq!((rows[0].as_str(), rows[1].as_str()), ("270 K 271 K", &".".repeat(25)[..]));
+        assert!(!rows.concat().contains("230 K"), "the curve lies there: {rows:#?}");
     }
 
     #[test]
