@@ -14,6 +14,7 @@ mod check_names;
 mod combine;
 mod evidence;
 pub mod health;
+mod histogram;
 mod judgements;
 mod lent_names;
 mod mistakes;
@@ -25,6 +26,7 @@ mod screened;
 mod table_reader;
 mod threshold;
 pub mod unusual;
+mod trying;
 mod verdict;
 
 #[cfg(test)]
@@ -38,9 +40,11 @@ pub use builtin::{BUILTIN_TEXT, builtin};
 pub use evidence::{
     Evidence, FamilyVoice, FlagEvidence, HealthEvidence, Reconstruction, TestEvidence,
 };
+pub use histogram::{Histogram, bin_of, proposed_threshold, usual_range};
 pub use mistakes::{RuleMistake, RulebookError};
 pub use rulebook::{Definition, Family, Rulebook, Surface, Test, Way};
 pub use run_tests::TestResult;
 pub use screened::{FlagResult, Screened, Summary, screen};
 pub use threshold::{Sense, Table, Threshold};
+pub use trying::{Agreement, Tried, try_threshold};
 pub use verdict::Verdict;
