@@ -6,10 +6,21 @@
 //! [`table::Section`] and name it in `main`.
 #![allow(clippy::print_stdout)]
 
+mod full_size;
 mod inversion;
+mod picturing;
+mod python;
 mod reading;
+mod reviewing;
 mod stopwatch;
 mod table;
+mod tabulating;
+
+use full_size::FullSize;
+use python::Python;
+
+/// What stands where Python is compared with.
+const NO_PYTHON: &str = "no Python with netCDF4 and numpy was found: RADSIEVE_PYTHON may name one";
 
 /// How large the measured cases are.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -25,7 +36,16 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     let measuring = std::env::args().any(|argument| argument == "--bench");
     let size = if measuring { Size::Full } else { Size::Small };
     println!("{}", inversion::section(size));
-    for section in reading::sections(size)? {
+    let python = Python::find();
+    for section in reading::sections(size, python.as_ref())? {
+        println!("{section}");
+    }
+    let full = FullSize::make(size)?;
+    println!("{}", tabulating::section(&full, python.as_ref())?);
+    for section in picturing::sections(&full)? {
+        println!("{section}");
+    }
+    for section in reviewing::sections(&full)? {
         println!("{section}");
     }
     Ok(())

@@ -9,6 +9,7 @@ use radsieve::netcdf_files::{
 };
 use radsieve::system::Cancel;
 
+use crate::python::Python;
 use crate::table::Section;
 use crate::{Size, stopwatch};
 
@@ -38,14 +39,17 @@ fn shapes(size: Size) -> Vec<Shape> {
 }
 
 /// The reading of both shapes, with chunks of whole spectra and with those that the library chooses.
-pub fn sections(size: Size) -> Result<Vec<Section>, Box<dyn std::error::Error>> {
+pub fn sections(
+    size: Size,
+    python: Option<&Python>,
+) -> Result<Vec<Section>, Box<dyn std::error::Error>> {
     let folder = tempfile::tempdir()?;
     let mut sections = Vec::new();
     for (number, shape) in shapes(size).iter().enumerate() {
         for whole_spectra in [true, false] {
             let path = folder.path().join(format!("synthetic_{number}_{whole_spectra}.nc"));
             write(&path, shape, whole_spectra)?;
-            sections.push(section(&path, shape, whole_spectra, size)?);
+            sections.push(section(&path, shape, whole_spectra, size, python)?);
         }
     }
     Ok(sections)
@@ -56,6 +60,7 @@ fn section(
     shape: &Shape,
     whole_spectra: bool,
     size: Size,
+    python: Option<&Python>,
 ) -> Result<Section, Box<dyn std::error::Error>> {
     let program = ReaderProgram::new(PathBuf::from(env!("CARGO_BIN_EXE_radsieve")));
     let open = || Granule::open(&program, path, &ReadLimits::default());
@@ -76,7 +81,7 @@ fn section(
     let by_library = processor_milliseconds(rounds, || drop(black_box(library(path))));
     let by_chunks =
         processor_milliseconds(rounds, || drop(black_box(open().map(|g| fill(&g, all.clone())))));
-    let rows = stopwatch::shortest(
+    let mut rows = stopwatch::shortest(
         rounds,
         vec![
             ("netCDF library in process, all values", Box::new(|| drop(black_box(library(path))))),
@@ -95,6 +100,9 @@ fn section(
             ("reader process, opening only", Box::new(|| drop(black_box(open())))),
         ],
     );
+    if let Some(python) = python {
+        rows.insert(1, ("netCDF4 and numpy, all values", python.read(path, rounds)?));
+    }
     let chunks = if whole_spectra { "chunks of whole spectra" } else { "the library's chunks" };
     Ok(Section {
         title: format!("Open a granule and read its values: {}, {chunks}", shape.name),
@@ -110,6 +118,7 @@ fn section(
                  all threads here"
             ),
             format!("resident memory {before:.0} MB before, {after:.0} MB with all values"),
+            if python.is_some() { String::new() } else { crate::NO_PYTHON.to_owned() },
         ],
     })
 }
