@@ -152,8 +152,9 @@ impl Granule {
             return Ok(identity);
         }
         self.check_unchanged()?;
-        let identity = Identity::of(self.path())
-            .map_err(|error| GranuleError::Read(ReadError::of_system(self.path(), &error)))?;
+        let limit = self.reader.limit();
+        let identity = Identity::of(self.path(), limit)
+            .map_err(|error| ReadError::of_slow_system(self.path(), &error, limit))?;
         self.check_unchanged()?;
         Ok(self.identity.get_or_init(|| identity))
     }

@@ -1,8 +1,10 @@
 //! What names a granule independently of its path: its content.
 
-use std::fs::File;
-use std::io::{self, Read};
+use std::io;
 use std::path::Path;
+use std::time::Duration;
+
+use crate::system::PatientFile;
 
 /// Size and content hash of a file.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -14,14 +16,17 @@ pub struct Identity {
 }
 
 impl Identity {
-    /// Reads the whole file.
-    pub fn of(path: &Path) -> io::Result<Self> {
+    /// Reads the whole file, whose file system has `limit` for each part.
+    ///
+    /// # Errors
+    /// As the system says; of the kind `TimedOut` where it did not answer.
+    pub fn of(path: &Path, limit: Duration) -> io::Result<Self> {
         const BUFFER: usize = 1 << 20;
-        let mut file = File::open(path)?;
+        let file = PatientFile::open(path, limit)?;
         let mut hasher = blake3::Hasher::new();
         let mut buffer = vec![0; BUFFER];
         loop {
-            match file.read(&mut buffer)? {
+            match file.read_at(&mut buffer, hasher.count())? {
                 0 => break,
                 read => hasher.update(&buffer[..read]),
             };
@@ -39,17 +44,19 @@ impl Identity {
 mod tests {
     use super::*;
 
+    const LIMIT: Duration = Duration::from_secs(60);
+
     #[test]
     fn the_content_counts_and_the_path_does_not() {
         let folder = tempfile::tempdir().unwrap();
         let path = folder.path().join("a");
         std::fs::write(&path, b"abc").unwrap();
-        let identity = Identity::of(&path).unwrap();
+        let identity = Identity::of(&path, LIMIT).unwrap();
         // Source: the published BLAKE3 hash of the three bytes "abc".
         assert!(identity.hash.starts_with("6437b3ac38465133ffb63b75273a8db5"), "{}", identity.hash);
         assert_eq!((identity.size, identity.short()), (3, "6437b3ac3846"));
         let other = folder.path().join("b");
         std::fs::write(&other, b"abc").unwrap();
-        assert_eq!(Identity::of(&other).unwrap(), identity);
+        assert_eq!(Identity::of(&other, LIMIT).unwrap(), identity);
     }
 }

@@ -452,6 +452,6 @@ fn the_hash_is_of_the_content() {
     let granule = open(&file.path).unwrap();
     assert!(granule.identity().is_none());
     let identity = granule.hash().unwrap().clone();
-    assert_eq!(identity, Identity::of(&file.path).unwrap());
+    assert_eq!(identity, Identity::of(&file.path, granule.reader.limit()).unwrap());
     assert_eq!(granule.identity(), Some(&identity));
 }

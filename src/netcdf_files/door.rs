@@ -1,13 +1,14 @@
 //! What is looked at before a file is handed to the libraries.
 
-use std::fs::{File, FileType, Metadata, OpenOptions};
+use std::fs::{File, FileType, Metadata};
 use std::io::{self, Read, Seek, SeekFrom};
 use std::os::unix::ffi::OsStrExt;
-use std::os::unix::fs::{FileTypeExt, OpenOptionsExt};
+use std::os::unix::fs::FileTypeExt;
 use std::path::Path;
+use std::time::Duration;
 
 use super::read_error::{ReadError, ReadFault};
-use crate::system::FileStamp;
+use crate::system::{FileStamp, open_without_waiting, within};
 
 const HDF5: &[u8] = b"\x89HDF\r\n\x1a\n";
 const CLASSIC: [&[u8]; 3] = [b"CDF\x01", b"CDF\x02", b"CDF\x05"];
@@ -17,8 +18,17 @@ const LAST_HDF5_START: u64 = 1 << 24;
 
 /// Lets a file through that is one, is readable and begins like netCDF or HDF5.
 ///
-/// Nothing here can wait for another process: pipes and devices are refused before they are opened.
-pub fn check(path: &Path) -> Result<FileStamp, ReadError> {
+/// Nothing here can wait for another process: pipes and devices are refused before they are opened,
+/// and a file system that does not answer within `limit` is given up.
+pub fn check(path: &Path, limit: Duration) -> Result<FileStamp, ReadError> {
+    let owned = path.to_owned();
+    within(limit, move || look_at(&owned)).unwrap_or_else(|| {
+        let what = "opening it".to_owned();
+        Err(ReadError::new(path, ReadFault::TimedOut { what, limit }))
+    })
+}
+
+fn look_at(path: &Path) -> Result<FileStamp, ReadError> {
     let refuse = |fault| Err(ReadError::new(path, fault));
     if looks_like_address(path) {
         return refuse(ReadFault::Address);
@@ -58,14 +68,6 @@ fn other_than_file(kind: FileType) -> Option<&'static str> {
     }
 }
 
-/// Opens a file for reading without waiting, for the case that it has been replaced by a pipe since it
-/// was looked at.
-pub fn open_without_waiting(path: &Path) -> io::Result<File> {
-    let wait_for_nobody = rustix::fs::OFlags::NONBLOCK.bits();
-    let flags = i32::from_ne_bytes(wait_for_nobody.to_ne_bytes());
-    OpenOptions::new().read(true).custom_flags(flags).open(path)
-}
-
 /// Nothing where the file begins as it should, else its first bytes in words.
 fn begins_like_netcdf(path: &Path, metadata: &Metadata) -> io::Result<Option<String>> {
     let mut file = open_without_waiting(path)?;
@@ -95,7 +97,7 @@ mod tests {
     use super::*;
 
     fn refused(path: &Path) -> ReadFault {
-        check(path).unwrap_err().fault
+        look_at(path).unwrap_err().fault
     }
 
     #[test]
@@ -126,7 +128,7 @@ mod tests {
         with_user_block.extend(HDF5);
         for good in [HDF5.to_vec(), b"CDF\x01rest".to_vec(), b"CDF\x05".to_vec(), with_user_block] {
             std::fs::write(&path, good).unwrap();
-            assert!(check(&path).is_ok());
+            assert!(check(&path, Duration::from_secs(60)).is_ok());
         }
         std::fs::write(&path, b"").unwrap();
         assert!(matches!(refused(&path), ReadFault::Empty));

@@ -91,22 +91,28 @@ impl LibraryFile {
         Ok(kind)
     }
 
-    /// Reads a block of strings, bad UTF-8 replaced.
+    /// Reads a block of strings, bad UTF-8 replaced; nothing if together they are longer than `most`
+    /// bytes.
     pub fn read_texts(
         &self,
         path: &str,
         start: &[usize],
         count: &[usize],
-    ) -> Result<Vec<String>, Refusal> {
+        most: usize,
+    ) -> Result<Option<Vec<String>>, Refusal> {
         let variable = self.variable(path)?;
         let ones = vec![1; count.len()];
-        let number = count.iter().product();
-        (0..number)
-            .map(|number| {
-                let place = place_in_block(number, start, count);
-                variable.get_string(extents(&place, &ones)?).map_err(|error| error.to_string())
-            })
-            .collect()
+        let (mut texts, mut length) = (Vec::new(), 0);
+        for number in 0..count.iter().product() {
+            let place = extents(&place_in_block(number, start, count), &ones)?;
+            let text = variable.get_string(place).map_err(|error| error.to_string())?;
+            length += text.len();
+            if length > most {
+                return Ok(None);
+            }
+            texts.push(text);
+        }
+        Ok(Some(texts))
     }
 
     /// The type of a variable's values.

@@ -7,7 +7,7 @@ use std::process::{Child, Command, Stdio};
 use std::thread::JoinHandle;
 use std::time::Duration;
 
-use super::messages::{self, Reply, Request};
+use super::messages::{self, LONGEST_MESSAGE, Reply, Request};
 use super::pipe::TimedPipe;
 use super::read_error::ReadFault;
 use super::reader_program::{READER_COMMAND, ReadLimits, ReaderProgram};
@@ -68,6 +68,13 @@ impl Link {
             Ok(Err(Reply::MissingFilter { filter })) => {
                 Err((ReadFault::MissingFilter { what, filter: clean_text(&filter) }, true))
             }
+            Ok(Err(Reply::TooLarge)) => {
+                let why = format!(
+                    "it is larger than {} MB, the most that is read at once",
+                    LONGEST_MESSAGE >> 20
+                );
+                Err((ReadFault::BadRequest { what, why }, true))
+            }
             Ok(Err(Reply::Failed { reason })) => {
                 Err((ReadFault::Library { what, reason: clean_text(&reason) }, true))
             }
@@ -101,7 +108,9 @@ impl Link {
         requests.flush()?;
         let mut input = TimedPipe { pipe: replies, deadline };
         match messages::receive::<Reply>(&mut input)? {
-            refusal @ (Reply::Failed { .. } | Reply::MissingFilter { .. }) => Ok(Err(refusal)),
+            refusal @ (Reply::Failed { .. } | Reply::MissingFilter { .. } | Reply::TooLarge) => {
+                Ok(Err(refusal))
+            }
             reply => take(reply, &mut input).map(Ok),
         }
     }

@@ -13,7 +13,7 @@ use super::index::FileIndex;
 use super::samples::ValueKind;
 
 /// The longest message taken, bytes. An index of 100,000 attributes stays well below.
-const LONGEST_MESSAGE: usize = 64 << 20;
+pub const LONGEST_MESSAGE: usize = 64 << 20;
 
 /// What the parent asks.
 #[derive(Debug, Serialize, Deserialize)]
@@ -57,6 +57,8 @@ pub enum Reply {
         /// What it said.
         reason: String,
     },
+    /// The values take more room than one answer has.
+    TooLarge,
     /// The values need a filter that the program does not have.
     MissingFilter {
         /// The filter.
@@ -64,11 +66,12 @@ pub enum Reply {
     },
 }
 
-/// Sends a message as one frame; flushing is left to the caller.
+/// Sends a message as one frame; flushing is left to the caller. Of a message that is too long
+/// (`FileTooLarge`) nothing is sent.
 pub fn send(output: &mut impl Write, message: &impl Serialize) -> io::Result<()> {
     let bytes = postcard::to_stdvec(message).map_err(io::Error::other)?;
     let length = u32::try_from(bytes.len()).ok().filter(|_| bytes.len() <= LONGEST_MESSAGE);
-    let length = length.ok_or_else(|| io::Error::other("the message is too long"))?;
+    let length = length.ok_or(io::ErrorKind::FileTooLarge)?;
     output.write_all(&length.to_le_bytes())?;
     output.write_all(&bytes)
 }
@@ -105,6 +108,14 @@ mod tests {
         send(&mut bytes, &request).unwrap();
         let back: Request = receive(&mut bytes.as_slice()).unwrap();
         assert_eq!(format!("{back:?}"), format!("{request:?}"));
+    }
+
+    #[test]
+    fn of_a_message_that_is_too_long_nothing_is_sent() {
+        let mut bytes = Vec::new();
+        let reply = Reply::Texts(vec!["x".repeat(LONGEST_MESSAGE)]);
+        let error = send(&mut bytes, &reply).unwrap_err();
+        assert_eq!((error.kind(), bytes.len()), (io::ErrorKind::FileTooLarge, 0));
     }
 
     #[test]

@@ -138,6 +138,17 @@ impl ReadError {
     pub fn of_system(path: &Path, error: &io::Error) -> Self {
         Self::new(path, ReadFault::Unreadable(error.to_string()))
     }
+
+    /// The same where the system had `limit` to answer.
+    pub fn of_slow_system(path: &Path, error: &io::Error, limit: Duration) -> Self {
+        match error.kind() {
+            io::ErrorKind::TimedOut => {
+                let what = "reading it".to_owned();
+                Self::new(path, ReadFault::TimedOut { what, limit })
+            }
+            _ => Self::of_system(path, error),
+        }
+    }
 }
 
 /// A path that is safe to print.

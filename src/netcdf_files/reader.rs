@@ -3,6 +3,7 @@
 use std::io;
 use std::path::{Path, PathBuf};
 use std::sync::{Mutex, PoisonError};
+use std::time::Duration;
 
 use super::chunks::{AtWork, ChunkTable, Demand, FastPath, KnownFile};
 use super::door;
@@ -15,7 +16,7 @@ use super::reader_program::{ReadLimits, ReaderProgram};
 use super::samples::{Samples, ValueKind};
 use super::serve::LARGEST_ANSWER;
 use super::turns::Turns;
-use crate::system::{Cancel, FileStamp};
+use crate::system::{Cancel, FileStamp, stamp_in_time};
 
 /// A file that a reader process has open. Many threads may ask; their questions take turns.
 ///
@@ -41,7 +42,7 @@ impl FileReader {
         path: &Path,
         limits: &ReadLimits,
     ) -> Result<Self, ReadError> {
-        let stamp = door::check(path)?;
+        let stamp = door::check(path, limits.per_request)?;
         let absolute =
             std::path::absolute(path).map_err(|error| ReadError::of_system(path, &error))?;
         let started =
@@ -72,6 +73,11 @@ impl FileReader {
         &self.path
     }
 
+    /// How long one question may take.
+    pub fn limit(&self) -> Duration {
+        self.limits.per_request
+    }
+
     /// The file's stamp when it was opened.
     pub fn stamp(&self) -> FileStamp {
         self.stamp
@@ -79,10 +85,11 @@ impl FileReader {
 
     /// An error if the file is not the one that was opened, by device, inode, size and time.
     pub fn check_unchanged(&self) -> Result<(), ReadError> {
-        match FileStamp::of(&self.absolute) {
+        let limit = self.limits.per_request;
+        match stamp_in_time(&self.absolute, limit) {
             Ok(stamp) if stamp == self.stamp => Ok(()),
             Ok(_) => Err(self.error(ReadFault::Changed)),
-            Err(error) => Err(ReadError::of_system(&self.path, &error)),
+            Err(error) => Err(ReadError::of_slow_system(&self.path, &error, limit)),
         }
     }
 
@@ -131,6 +138,7 @@ impl FileReader {
             opened: &self.absolute,
             stamp: self.stamp,
             index: &self.index,
+            limit: self.limits.per_request,
         };
         let fast = self.fast.read(known, variable, (start, count), demand, || {
             self.chunk_table(variable, &what, demand.urgent)

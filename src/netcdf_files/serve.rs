@@ -1,12 +1,12 @@
 //! The reader's side: answers questions about one file until nobody asks any more.
 
-use std::io::{Read, Write};
+use std::io::{ErrorKind, Read, Write};
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::path::Path;
 use std::sync::mpsc;
 
 use super::library_file::{LibraryFile, Refusal};
-use super::messages::{self, Reply, Request};
+use super::messages::{self, LONGEST_MESSAGE, Reply, Request};
 use super::samples::ValueKind;
 
 /// The most bytes of values in one answer.
@@ -51,7 +51,12 @@ impl Desk<'_> {
         let reply = catch_unwind(AssertUnwindSafe(|| self.work_out(&request)))
             .unwrap_or_else(|_| Err("the library stumbled over it".into()))
             .unwrap_or_else(|reason| self.refusal(&request, reason));
-        messages::send(output, &reply)?;
+        match messages::send(output, &reply) {
+            Err(error) if error.kind() == ErrorKind::FileTooLarge => {
+                return messages::send(output, &Reply::TooLarge);
+            }
+            sent => sent?,
+        }
         match reply {
             Reply::Values { .. } => output.write_all(&self.bytes),
             _ => Ok(()),
@@ -68,7 +73,8 @@ impl Desk<'_> {
             Request::Index => Ok(Reply::Index(Box::new(file.index()?))),
             Request::Read { path, start, count } => {
                 if file.kind(path)? == ValueKind::Text {
-                    return Ok(Reply::Texts(file.read_texts(path, start, count)?));
+                    let texts = file.read_texts(path, start, count, LONGEST_MESSAGE)?;
+                    return Ok(texts.map_or(Reply::TooLarge, Reply::Texts));
                 }
                 let kind = file.read_values(path, start, count, &mut self.bytes)?;
                 let size = kind.size().unwrap_or(1);

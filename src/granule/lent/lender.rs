@@ -126,8 +126,9 @@ impl Lender {
             return Ok(identity);
         }
         self.reader.check_unchanged()?;
-        let identity = Identity::of(self.path())
-            .map_err(|error| GranuleError::Read(ReadError::of_system(self.path(), &error)))?;
+        let limit = self.reader.limit();
+        let identity = Identity::of(self.path(), limit)
+            .map_err(|error| ReadError::of_slow_system(self.path(), &error, limit))?;
         self.reader.check_unchanged()?;
         Ok(self.identity.get_or_init(|| identity))
     }

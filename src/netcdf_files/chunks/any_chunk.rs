@@ -1,6 +1,7 @@
 //! Chunks and tables of them out of any bytes, for [`crate::netcdf_files::any_bytes`].
 
 use std::path::Path;
+use std::time::Duration;
 
 use super::chunk_file::ChunkFile;
 use super::decode::{Decoder, ScratchPool};
@@ -19,7 +20,7 @@ pub fn table(bytes: &[u8], file: &Path) -> bool {
     if values > MOST_VALUES || table.grid.chunk_values() > MOST_VALUES {
         return false;
     }
-    let Ok(file) = ChunkFile::open(file) else { return false };
+    let Ok(file) = ChunkFile::open(file, Duration::from_secs(10)) else { return false };
     let scratch = ScratchPool::default();
     let decoder =
         Decoder { table: &table, file: &file, scratch: &scratch, cancel: None, shared: false };

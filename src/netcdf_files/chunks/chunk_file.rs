@@ -1,30 +1,29 @@
 //! The file that chunks are read from, past the libraries.
 
-use std::fs::File;
 use std::io;
-use std::os::unix::fs::FileExt;
 use std::path::Path;
+use std::time::Duration;
 
 use super::fault::ChunkFault;
 use super::table::StoredChunk;
-use crate::netcdf_files::door::open_without_waiting;
-use crate::system::FileStamp;
+use crate::system::{FileStamp, PatientFile};
 
 /// An open file of which it is known which one it is.
 #[derive(Debug)]
 pub struct ChunkFile {
-    file: File,
+    file: PatientFile,
 }
 
 impl ChunkFile {
-    /// Opens the file at `path`. Whether it is the right one, [`Self::stamp`] tells.
-    pub fn open(path: &Path) -> io::Result<Self> {
-        Ok(Self { file: open_without_waiting(path)? })
+    /// Opens the file at `path`, whose file system has `limit` for each thing that is asked of it.
+    /// Whether it is the right file, [`Self::stamp`] tells.
+    pub fn open(path: &Path, limit: Duration) -> io::Result<Self> {
+        Ok(Self { file: PatientFile::open(path, limit)? })
     }
 
     /// The stamp of the open file as it is now.
     pub fn stamp(&self) -> io::Result<FileStamp> {
-        Ok(FileStamp::from(&self.file.metadata()?))
+        self.file.stamp()
     }
 
     /// Reads the bytes of a chunk into `bytes`.

@@ -4,12 +4,13 @@ use std::collections::BTreeMap;
 use std::io;
 use std::path::Path;
 use std::sync::{Arc, Mutex, OnceLock, PoisonError};
+use std::time::Duration;
 
 use super::chunk_file::ChunkFile;
 use super::decode::{AtWork, Decoder, ScratchPool, Stopped};
 use super::table::{CheckedTable, ChunkTable};
 use crate::netcdf_files::{FileFormat, FileIndex, ReadError, ReadFault, Samples, Variable};
-use crate::system::{Cancel, FileStamp};
+use crate::system::{Cancel, FileStamp, stamp_in_time};
 
 /// Smaller variables, in bytes, come from the reader with one question instead of two.
 const WORTH_ASKING: usize = 256 << 10;
@@ -51,6 +52,8 @@ pub struct KnownFile<'a> {
     pub stamp: FileStamp,
     /// What it holds.
     pub index: &'a FileIndex,
+    /// How long the file system may take for each thing.
+    pub limit: Duration,
 }
 
 impl FastPath {
@@ -76,7 +79,7 @@ impl FastPath {
         }
         let Some(table) = self.table(known, variable, ask)? else { return Ok(None) };
         // Neither another file in its place nor other bytes in the same one.
-        check_unchanged(known, FileStamp::of(known.opened))?;
+        check_unchanged(known, stamp_in_time(known.opened, known.limit))?;
         let file = self.file(known)?;
         check_unchanged(known, file.stamp())?;
         let decoder = Decoder {
@@ -91,7 +94,9 @@ impl FastPath {
         check_unchanged(known, file.stamp())?;
         match samples {
             Ok(samples) => Ok(Some(samples)),
-            Err(stopped) => Err(ReadError::new(known.path, fault_of(stopped, variable, &table))),
+            Err(stopped) => {
+                Err(ReadError::new(known.path, fault_of(stopped, variable, &table, known.limit)))
+            }
         }
     }
 
@@ -122,8 +127,8 @@ impl FastPath {
         if let Some(file) = self.file.get() {
             return Ok(file);
         }
-        let file = ChunkFile::open(known.opened)
-            .map_err(|error| ReadError::of_system(known.path, &error))?;
+        let file = ChunkFile::open(known.opened, known.limit)
+            .map_err(|error| ReadError::of_slow_system(known.path, &error, known.limit))?;
         Ok(self.file.get_or_init(|| file))
     }
 }
@@ -141,14 +146,20 @@ fn check_unchanged(known: KnownFile<'_>, now: io::Result<FileStamp>) -> Result<(
     match now {
         Ok(stamp) if stamp == known.stamp => Ok(()),
         Ok(_) => Err(ReadError::new(known.path, ReadFault::Changed)),
-        Err(error) => Err(ReadError::of_system(known.path, &error)),
+        Err(error) => Err(ReadError::of_slow_system(known.path, &error, known.limit)),
     }
 }
 
-fn fault_of(stopped: Stopped, variable: &Variable, table: &CheckedTable) -> ReadFault {
+fn fault_of(
+    stopped: Stopped,
+    variable: &Variable,
+    table: &CheckedTable,
+    limit: Duration,
+) -> ReadFault {
     let what = format!("variable `{}`", crate::system::clean_text(&variable.path));
     match stopped {
         Stopped::Cancelled => ReadFault::Cancelled { what },
+        Stopped::Chunk { fault, .. } if fault.is_late() => ReadFault::TimedOut { what, limit },
         Stopped::Chunk { number, fault } => {
             ReadFault::Chunk { what, place: table.grid.place(number), how: fault.to_string() }
         }

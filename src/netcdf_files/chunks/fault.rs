@@ -32,3 +32,10 @@ pub enum ChunkFault {
     #[error("it was never written")]
     Missing,
 }
+
+impl ChunkFault {
+    /// Whether the file system did not answer in time.
+    pub fn is_late(&self) -> bool {
+        matches!(self, Self::Unread(error) if error.kind() == io::ErrorKind::TimedOut)
+    }
+}

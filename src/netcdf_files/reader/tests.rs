@@ -68,6 +68,25 @@ fn blocks_strings_and_big_endian_values_come_back() {
 }
 
 #[test]
+fn strings_longer_than_an_answer_are_named_so_and_parts_of_them_are_read() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("file.nc");
+    let mut writer = NetcdfWriter::create(&path).unwrap();
+    writer.dimension("x", 68).unwrap();
+    writer.variable(&VariableDraft::new("long", ValueKind::Text, &["x"])).unwrap();
+    writer.put_all("long", &Samples::Text(vec!["s".repeat(1_000_000); 68])).unwrap();
+    writer.close().unwrap();
+
+    let reader = open(&path).unwrap();
+    let long = reader.index().variable("long").unwrap();
+    let error = reader.read_all(long).unwrap_err();
+    assert!(matches!(error.fault, ReadFault::BadRequest { .. }), "{error}");
+    assert!(error.to_string().contains("larger than 64 MB"), "{error}");
+    assert!(!error.fault.ends_the_file());
+    assert_eq!(reader.read(long, &[60], &[8]).unwrap().len(), 8, "the reader goes on");
+}
+
+#[test]
 fn large_variables_come_the_same_by_chunks_and_by_the_reader() {
     let folder = tempfile::tempdir().unwrap();
     let path = folder.path().join("file.nc");

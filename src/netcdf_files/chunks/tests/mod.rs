@@ -49,6 +49,7 @@ impl Both {
             opened: &self.path,
             stamp: self.stamp,
             index: &self.index,
+            limit: std::time::Duration::from_secs(60),
         };
         let ask = || Ok(self.library.chunks(path).ok());
         self.fast.read(known, self.variable(path), (start, count), demand, ask)
