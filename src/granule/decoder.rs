@@ -99,18 +99,33 @@ impl Decoder {
             return 0;
         }
         let declared = Self { undeclared_fill: false, ..self.clone() };
+        let is_one =
+            |stored: f64| self.is_low(stored) && declared.decode(stored) <= UNDECLARED_FILL;
         with_values!(
             samples,
-            values => values.iter().filter(|&&value| declared.is_undeclared(value as f64)).count(),
+            values => match self.may_be_undeclared(values.iter().map(|&value| value as f64)) {
+                true => values.iter().filter(|&&value| is_one(value as f64)).count(),
+                false => 0,
+            },
             _strings => 0
         )
     }
 
-    /// The quick test comes first: hardly any value passes it.
+    /// Whether any stored value could be that low: looked for without a branch, several at once, for
+    /// every value of a file passes here.
     #[inline]
-    fn is_undeclared(&self, stored: f64) -> bool {
-        stored * self.scale + self.offset <= UNDECLARED_FILL
-            && self.decode(stored) <= UNDECLARED_FILL
+    fn may_be_undeclared(&self, mut stored: impl Iterator<Item = f64>) -> bool {
+        match self.wrap != 0.0 {
+            true => stored.any(|stored| self.is_low(stored)),
+            false => stored.fold(false, |any, stored| {
+                any | (stored * self.scale + self.offset <= UNDECLARED_FILL)
+            }),
+        }
+    }
+
+    #[inline]
+    fn is_low(&self, stored: f64) -> bool {
+        self.unsigned(stored) * self.scale + self.offset <= UNDECLARED_FILL
     }
 
     /// Whether stored values differ from the numbers they stand for.

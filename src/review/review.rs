@@ -111,6 +111,14 @@ impl Review {
         self.layers(&[text], cancel).swap_remove(0)
     }
 
+    /// The bands that an expression needs; none where the text is no expression.
+    pub fn bands_of(&self, text: &str) -> Vec<usize> {
+        let channels = self.channels_of_layer(text).into_iter();
+        let mut bands: Vec<usize> = channels.map(|channel| channel.band).collect();
+        bands.dedup();
+        bands
+    }
+
     /// The same for several expressions, which share what they have in common.
     pub fn layers(&self, texts: &[&str], cancel: &Cancel) -> Vec<Result<Layer, String>> {
         let parsed: Vec<Result<Expression, String>> = texts

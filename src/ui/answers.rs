@@ -29,7 +29,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
     match answer {
         Answer::Standing { entry, found } => standing(app, entry, found),
         Answer::Opened { request, found } => opened(app, request, found),
-        Answer::Filling { request, share } => filling(app, request, share),
+        Answer::Filling { request, share, of_layer } => filling(app, request, share, of_layer),
         Answer::Filled { request, found } => filled(app, request, found),
         Answer::Record { request, found } => record(app, request, found),
         Answer::Reread { request, found } => reread(app, request, found),
@@ -81,12 +81,14 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     bench.filling.request = fill;
     bench.awaited.record = record;
     bench.awaited.quality = quality;
-    let mut jobs = vec![
-        Job::Fill {
-            request: fill,
-            review: Arc::clone(&bench.review),
-            cancel: bench.filling.cancel.clone(),
-        },
+    let mut jobs = vec![Job::Fill {
+        request: fill,
+        review: Arc::clone(&bench.review),
+        layer: bench.wanted.clone(),
+        cancel: bench.filling.cancel.clone(),
+    }];
+    // The first picture needs the processors for itself.
+    bench.behind_first_picture = vec![
         Job::Record { request: record, review: Arc::clone(&bench.review) },
         Job::Quality { request: quality, review: Arc::clone(&bench.review) },
     ];
@@ -114,11 +116,15 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     jobs
 }
 
-fn filling(app: &mut App, request: u64, share: f64) -> Vec<Job> {
+fn filling(app: &mut App, request: u64, share: f64, of_layer: bool) -> Vec<Job> {
     let Some(bench) = awaited(app, |bench| bench.filling.request == request) else {
         return Vec::new();
     };
     bench.filling.share = share;
+    if of_layer && !bench.filling.of_layer {
+        bench.filling.of_layer = true;
+        return looking::refresh_layer(app);
+    }
     more_is_there(app)
 }
 
@@ -127,13 +133,15 @@ fn filled(app: &mut App, request: u64, found: Result<(), String>) -> Vec<Job> {
         return Vec::new();
     };
     bench.filling.done = true;
+    bench.filling.of_layer = true;
     bench.filling.share = 1.0;
+    let mut jobs = std::mem::take(&mut bench.behind_first_picture);
     if let Err(why) = found {
         bench.filling.problem = Some(why.clone());
         app.message = (why, Tone::Bad);
     }
     // Whatever is on its way was begun without the last of the spectra.
-    let mut jobs = looking::refresh_layer(app);
+    jobs.extend(looking::refresh_layer(app));
     jobs.extend(looking::refresh_indices(app));
     jobs.extend(screening::start(app));
     jobs.extend(looking::fill_pins(app));
@@ -143,11 +151,12 @@ fn filled(app: &mut App, request: u64, found: Result<(), String>) -> Vec<Job> {
 /// More spectra are there: what is on show is evaluated anew, unless that is under way.
 fn more_is_there(app: &mut App) -> Vec<Job> {
     let mut jobs = Vec::new();
-    let Some(awaited) = app.bench().map(|bench| bench.awaited) else { return jobs };
+    let Some(bench) = app.bench() else { return jobs };
+    let (awaited, of_layer) = (bench.awaited, bench.filling.of_layer);
     if awaited.layer == 0 {
         jobs.extend(looking::refresh_layer(app));
     }
-    if awaited.indices == 0 {
+    if awaited.indices == 0 && of_layer {
         jobs.extend(looking::refresh_indices(app));
     }
     jobs.extend(looking::fill_pins(app));
@@ -259,6 +268,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
                 bench.other_layer = Some(before).filter(|layer| !layer.values.is_empty());
             }
             let difference = layer.unit == LayerUnit::KelvinDifference;
+            bench.layer.bands = layer.bands;
             bench.layer.fill(layer.values, layer.unit.label(), difference, layer.notes);
             tracing::mark_used(bench);
         }
@@ -269,7 +279,10 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
             app.warn(why);
         }
     }
-    Vec::new()
+    match app.bench_mut() {
+        Some(bench) if bench.filling.of_layer => std::mem::take(&mut bench.behind_first_picture),
+        _ => Vec::new(),
+    }
 }
 
 fn indices(app: &mut App, request: u64, found: Vec<Result<Layer, String>>) -> Vec<Job> {

@@ -14,6 +14,7 @@ pub use super::bench_parts::{
 };
 use super::channels::Channels;
 use super::doubting::Doubt;
+use super::jobs::Job;
 use super::overlay::Selection;
 use super::panes::Arrangement;
 use super::panes::field::Placement;
@@ -86,6 +87,8 @@ pub struct Bench {
     pub strip_along: usize,
     /// How far the reading of the spectra has come.
     pub filling: Filling,
+    /// What is started once the first picture is there.
+    pub behind_first_picture: Vec<Job>,
     /// The requests whose answers are waited for.
     pub awaited: Awaited,
     /// What ends jobs whose answers are no longer waited for.
@@ -144,6 +147,7 @@ impl Bench {
             marks: true,
             strip_along: 0,
             filling: Filling::default(),
+            behind_first_picture: Vec::new(),
             awaited: Awaited::default(),
             overtaken: Overtaken::default(),
             export_waits: None,

@@ -109,6 +109,8 @@ pub struct Filling {
     pub cancel: Cancel,
     /// The share that is there, 0 to 1.
     pub share: f64,
+    /// All that the first layer needs is there.
+    pub of_layer: bool,
     /// All is there.
     pub done: bool,
     /// Why some of it can't be read, if so.

@@ -38,6 +38,8 @@ pub enum Job {
         request: u64,
         /// The granule.
         review: Arc<Review>,
+        /// The layer whose bands are read before the others.
+        layer: String,
         /// Ends it early.
         cancel: Cancel,
     },
@@ -204,6 +206,8 @@ pub enum Answer {
         request: u64,
         /// The share, 0 to 1.
         share: f64,
+        /// Whether all that the first layer needs is among them.
+        of_layer: bool,
     },
     /// The reading of the spectra ended.
     Filled {

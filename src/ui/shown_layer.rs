@@ -47,6 +47,8 @@ pub struct ShownLayer {
     pub text: String,
     /// One value per footprint; empty until the first answer.
     pub values: Vec<f64>,
+    /// The bands that they come from.
+    pub bands: Vec<usize>,
     /// The unit's label.
     pub unit: String,
     /// Whether it is a difference, coloured around zero.
@@ -67,6 +69,7 @@ impl ShownLayer {
         ShownLayer {
             text: text.to_owned(),
             values: Vec::new(),
+            bands: Vec::new(),
             unit: String::new(),
             difference: false,
             notes: Vec::new(),

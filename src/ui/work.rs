@@ -20,6 +20,8 @@ use super::trace_look::{Beside, ReferenceFile};
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
 const PROGRESS_PAUSE: Duration = Duration::from_millis(80);
+/// The first picture, of what is there by then, comes sooner.
+const FIRST_PAUSE: Duration = Duration::from_millis(10);
 /// More variables on quality than this do not fit the Evidence.
 const MOST_QUALITY: usize = 16;
 
@@ -35,7 +37,9 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = found.map(Arc::new).map_err(in_words);
             send(Answer::Opened { request: *request, found });
         }
-        Job::Fill { request, review, cancel } => fill(*request, review, cancel, send),
+        Job::Fill { request, review, layer, cancel } => {
+            fill(*request, review, layer, cancel, send);
+        }
         Job::Record { request, review } => {
             let found = record(review, outside);
             send(Answer::Record { request: *request, found });
@@ -157,13 +161,24 @@ fn in_words(error: GranuleError) -> String {
     error.to_string()
 }
 
-fn fill(request: u64, review: &Review, cancel: &Cancel, send: &(dyn Fn(Answer) + Sync)) {
-    let mut told = Instant::now();
-    let found = review.granule().fill(cancel, &mut |progress| {
-        if told.elapsed() >= PROGRESS_PAUSE && progress.done < progress.total {
-            told = Instant::now();
+fn fill(
+    request: u64,
+    review: &Review,
+    layer: &str,
+    cancel: &Cancel,
+    send: &(dyn Fn(Answer) + Sync),
+) {
+    let first = review.bands_of(layer);
+    let others = (0..review.granule().bands().len()).filter(|band| !first.contains(band));
+    let order: Vec<usize> = first.iter().copied().chain(others).collect();
+    let (mut told, mut pause, mut of_layer) = (Instant::now(), FIRST_PAUSE, false);
+    let found = review.granule().fill_bands(order, cancel, &mut |progress| {
+        let complete = of_layer || first.iter().all(|band| review.cube().is_complete(*band));
+        let is_news = complete != of_layer || told.elapsed() >= pause;
+        if is_news && progress.done < progress.total {
+            (told, pause, of_layer) = (Instant::now(), PROGRESS_PAUSE, complete);
             let share = progress.done as f64 / progress.total.max(1) as f64;
-            send(Answer::Filling { request, share });
+            send(Answer::Filling { request, share, of_layer });
         }
     });
     match found {

@@ -1,5 +1,7 @@
 //! Evaluation over all footprints of a granule.
 
+use std::collections::BTreeSet;
+
 use super::error::LayerError;
 use super::gather::{Column, gather};
 use super::layer::Layer;
@@ -85,6 +87,7 @@ impl Work {
             unit: output.unit,
             values: self.column(output.source).to_vec(),
             channels: single_channels(&plan.leaves, output),
+            bands: bands(&plan.leaves, output),
             not_positive: not_positive(&self.leaves, output),
             notes: notes(&plan.leaves, &self.leaves, output, names),
         }
@@ -108,6 +111,11 @@ fn single_channels(leaves: &[Leaf], output: &Output) -> Vec<Channel> {
         }
     }
     channels
+}
+
+fn bands(leaves: &[Leaf], output: &Output) -> Vec<usize> {
+    let channels = output.leaves.iter().flat_map(|at| leaves[*at].channels());
+    channels.map(|channel| channel.band).collect::<BTreeSet<usize>>().into_iter().collect()
 }
 
 /// Footprints at which one of the expression's radiances has no temperature.

@@ -14,6 +14,8 @@ pub struct Layer {
     pub values: Vec<f64>,
     /// The channels that `bt` and `rad` of one place took, in the order of the text.
     pub channels: Vec<Channel>,
+    /// The bands of all channels that it takes, each once.
+    pub bands: Vec<usize>,
     /// Footprints, in their order, at which a radiance that the expression uses itself is zero or
     /// less and so has no brightness temperature.
     pub not_positive: Vec<usize>,

@@ -117,15 +117,16 @@ fn pins(bench: &Bench) -> Vec<Pin> {
     shown.map(|pin| Pin { footprint: pin.footprint, letter: pin.letter }).collect()
 }
 
-/// Footprints of which some spectra have not been read.
+/// Footprints whose value waits for spectra that have not been read. As long as any are being read, one
+/// without a value may be one whose spectrum has come since the layer was evaluated.
 fn pending(bench: &Bench) -> Vec<bool> {
     if bench.filling.done {
         return Vec::new();
     }
-    let cube = bench.review.cube();
-    let bands = bench.review.granule().bands().len();
-    let mut pending = vec![false; bench.footprints()];
-    for band in 0..bands {
+    let (cube, layer) = (bench.review.cube(), &bench.layer);
+    let mut pending: Vec<bool> = layer.values.iter().map(|value| value.is_nan()).collect();
+    pending.resize(bench.footprints(), true);
+    for &band in &layer.bands {
         for slab in (0..cube.slabs(band)).filter(|slab| !cube.has_slab(band, *slab)) {
             if let Some(rows) = pending.get_mut(cube.footprints_of(band, slab)) {
                 rows.fill(true);
