@@ -315,6 +315,11 @@ impl Cube {
         Ok(all)
     }
 
+    /// The running mean that a band's values are apodised by, where that was asked for.
+    pub(super) fn apodised_by(&self, band: usize) -> Option<&Hamming3> {
+        self.bands[band].apodise.as_ref()
+    }
+
     /// Decodes values that were read past the cube: one footprint's channels.
     pub(super) fn decode_spectrum(&self, band: usize, samples: &Samples) -> Vec<f64> {
         let mut out = Vec::new();

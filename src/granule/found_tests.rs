@@ -123,10 +123,53 @@ fn noise_by_detector_is_that_of_the_footprint() {
 }
 
 #[test]
+fn noise_in_kelvin_is_brought_to_radiance_at_its_scene() {
+    // Source: dB/dT at 900 cm-1, worked with 50 digits and rounded to 6.
+    for (draft, slope) in [
+        (radiance("nedt", &["nu"], "K"), 1.43443),
+        (radiance("nedt", &["nu"], "K").attribute("long_name", "NEdT at 250 K"), 1.02434),
+        (radiance("nedt", &["nu"], "K").attribute("reference_temperature", 220.0), 0.649002),
+    ] {
+        let guessed = slope == 1.43443;
+        let granule = with(draft, vec![0.5, 0.5, -1.0]);
+        assert_eq!(has_problem(&granule, "taken as 280 K"), guessed);
+        let values = granule.noise(0, 3).unwrap().unwrap();
+        assert!((values[0] / (0.5 * slope) - 1.0).abs() < 1e-5, "{values:?}");
+        assert!(values[2].is_nan(), "no standard deviation is below zero");
+    }
+}
+
+#[test]
+fn noise_of_temperatures_is_that_of_the_footprints_own_scene() {
+    let granule = |name: &'static str, units: &'static str, noise: f32| {
+        opened(move |writer| {
+            writer.dimension("line", 2).unwrap();
+            writer.dimension("nu", 1).unwrap();
+            put(writer, axis("nu", "nu", "cm-1"), vec![2500.0]);
+            let band = radiance("bt", &["line", "nu"], "K");
+            put(
+                writer,
+                band.attribute("standard_name", "toa_brightness_temperature"),
+                vec![280.0_f32, 220.0],
+            );
+            let draft = radiance(name, &["nu"], units);
+            put(writer, draft.attribute("long_name", "noise at 280 K"), vec![noise]);
+        })
+    };
+    // Source: 0.1 K at 280 K near 2500 cm-1 is 2.05 K at 220 K, worked with 50 digits; dB/dT there is
+    // 0.0225073 and 0.00109707. Stored in single precision.
+    let given = granule("nedt", "K", 0.1);
+    assert!((given.noise(0, 0).unwrap().unwrap()[0] - 0.1).abs() < 1e-7);
+    assert!((given.noise(0, 1).unwrap().unwrap()[0] - 2.05).abs() < 0.005);
+    let given = granule("nedn", UNIT, 0.01);
+    assert!((given.noise(0, 1).unwrap().unwrap()[0] * 0.00109707 / 0.01 - 1.0).abs() < 1e-5);
+}
+
+#[test]
 fn noise_that_cannot_be_used_is_named_and_noise_of_other_shapes_is_none() {
-    let granule = with(radiance("nedt", &["nu"], "K"), vec![0.1; 3]);
+    let granule = with(radiance("nedr", &["nu"], "counts"), vec![0.1; 3]);
     assert_eq!(granule.bands()[0].noise, None);
-    assert!(has_problem(&granule, "its noise `nedt` cannot be used"));
+    assert!(has_problem(&granule, "its noise `nedr` cannot be used"));
     let granule = with(radiance("noise", &["line", "position"], UNIT), vec![0.1; 6]);
     assert_eq!(granule.noise(0, 0).unwrap(), None);
 }

@@ -3,7 +3,7 @@
 use std::path::Path;
 use std::sync::{Arc, OnceLock};
 
-use super::band::{Band, Channel, Quantity};
+use super::band::{Band, Channel};
 use super::channels::{NoChannel, channel_near, channels_between};
 use super::cube::Cube;
 use super::decoder::Decoder;
@@ -162,24 +162,6 @@ impl Granule {
     /// The same, once [`Self::hash`] has been asked for.
     pub fn identity(&self) -> Option<&Identity> {
         self.identity.get()
-    }
-
-    /// The noise of a footprint's channels in a band, as a standard deviation in mW m-2 sr-1 (cm-1)-1
-    /// or K by the band's quantity, missing as NaN; nothing where the file does not give it. It is that
-    /// of the spectra in the file, before anything is done on request.
-    pub fn noise(&self, band: usize, footprint: usize) -> Result<Option<Vec<f64>>, GranuleError> {
-        let Some(noise) = &self.bands[band].noise else { return Ok(None) };
-        let variable = &self.index().variables[noise.place];
-        let (start, count) = noise.layout.spectrum(&self.footprints.position(footprint));
-        let samples = self.reader.read(variable, &start, &count)?;
-        let mut values = Decoder::of(variable).decode_all(&samples);
-        if let Quantity::Radiance(unit) = &noise.quantity {
-            let wavenumbers = self.bands[band].axis.wavenumbers();
-            for (value, &wavenumber) in values.iter_mut().zip(wavenumbers) {
-                *value *= unit.factor_at(wavenumber);
-            }
-        }
-        Ok(Some(values))
     }
 
     /// Reads a variable of the footprints: one number for each, missing as NaN. `name` is its path,

@@ -57,6 +57,8 @@ pub struct BandEntry {
     pub noise: Option<String>,
     /// The unit of that variable.
     pub noise_unit: Option<String>,
+    /// The temperature of the scene that a noise in K is given for, K.
+    pub noise_temperature: Option<f64>,
     /// Channels, counted from 0 in the file's order, that no layer may use.
     pub bad_channels: Option<Vec<usize>>,
 }
@@ -71,7 +73,7 @@ pub enum ApodiseBy {
 
 const KEYS: [&str; 5] = ["footprint_dimensions", "quality", "apodise", "bands", "geolocation"];
 
-const BAND_KEYS: [&str; 10] = [
+const BAND_KEYS: [&str; 11] = [
     "variable",
     "name",
     "unit",
@@ -81,6 +83,7 @@ const BAND_KEYS: [&str; 10] = [
     "apodisation",
     "noise",
     "noise_unit",
+    "noise_temperature",
     "bad_channels",
 ];
 
@@ -172,6 +175,7 @@ mod tests {
             apodisation = "none"
             noise = "spread"
             noise_unit = "mW m-2 sr-1 (cm-1)-1"
+            noise_temperature = 250.0
             bad_channels = [0, 5]
             [geolocation]
             lat = "y"

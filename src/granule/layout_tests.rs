@@ -91,8 +91,11 @@ fn noise_is_the_variable_said() {
     let granule = open(&file, &band(&unit)).unwrap();
     assert_eq!(granule.noise(0, 0).unwrap().unwrap()[2], f64::from(0.3_f32));
     assert!(refused(&file, &band("noise = \"spread\"")).contains("noise: no unit is given"));
-    let error = refused(&file, &band("noise = \"spread\"\nnoise_unit = \"K\""));
-    assert!(error.contains("brightness temperature where the band is radiance"), "{error}");
+    let kelvin = "noise = \"spread\"\nnoise_unit = \"K\"\nnoise_temperature = 250.0\n";
+    let granule = open(&file, &band(kelvin)).unwrap();
+    assert_eq!(granule.bands()[0].noise.as_ref().unwrap().scene, Some(250.0));
+    let error = refused(&file, &band("noise = \"spread\"\nnoise_unit = \"m\""));
+    assert!(error.contains("or K or degC for temperatures"), "{error}");
 }
 
 fn same_again(file: &File, layout: &str) {

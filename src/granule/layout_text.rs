@@ -61,6 +61,9 @@ fn write_band(text: &mut String, granule: &Granule, band: &Band, bad: &[bool]) {
     line(text, "noise", &quoted(band.noise.as_ref().map_or("", |noise| &noise.variable)));
     if let Some(noise) = &band.noise {
         line(text, "noise_unit", &quoted(&noise.unit_text));
+        if let Some(kelvin) = noise.scene {
+            line(text, "noise_temperature", &toml::Value::Float(kelvin).to_string());
+        }
     }
     let bad = bad.iter().enumerate().filter(|(_, bad)| **bad);
     let bad: Vec<String> = bad.map(|(channel, _)| channel.to_string()).collect();

@@ -31,6 +31,7 @@ mod lent;
 mod memory_plan;
 mod named_variable;
 mod noise;
+mod noise_values;
 mod open;
 mod opening;
 mod passing;

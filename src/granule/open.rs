@@ -135,7 +135,7 @@ fn noise(
     match said.noise.as_deref() {
         Some("") => Ok(None),
         Some(name) => search
-            .said(name, said.noise_unit.as_deref())
+            .said(name, said.noise_unit.as_deref(), said.noise_temperature, problems)
             .map(Some)
             .map_err(|reason| format!("band `{}`: noise: {reason}", said.variable)),
         None => Ok(search.find(problems)),

@@ -59,6 +59,20 @@ impl Hamming3 {
             None => f64::NAN,
         }
     }
+
+    /// The standard deviation of a channel's value where those before are independent of each other
+    /// with the given ones: the root of the sum of the squares, each with its weight. NaN where the
+    /// channel has no value.
+    pub fn deviation(&self, channel: usize, before: impl Fn(usize) -> f64) -> f64 {
+        let squared = |place: usize, weight: f64| (weight * before(place)).powi(2);
+        match self.neighbours[channel] {
+            Some([one, other]) => (squared(one, HAMMING_SIDE)
+                + squared(channel, HAMMING_CENTRE)
+                + squared(other, HAMMING_SIDE))
+            .sqrt(),
+            None => f64::NAN,
+        }
+    }
 }
 
 #[cfg(test)]
@@ -78,6 +92,13 @@ mod tests {
     }
 
     const NONE: f64 = f64::NAN;
+
+    #[test]
+    fn equal_noise_shrinks_by_the_factor() {
+        let mean = Hamming3::new(&axis(&[650.0, 650.625, 651.25]), |_| true);
+        assert!((mean.deviation(1, |_| 2.0) / 2.0 - HAMMING_NOISE_FACTOR).abs() < 1e-15);
+        assert!(mean.deviation(0, |_| 2.0).is_nan());
+    }
 
     #[test]
     fn a_single_channel_spreads_to_its_neighbours() {

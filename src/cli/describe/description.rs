@@ -105,6 +105,9 @@ pub struct BandDescription {
 pub struct NoiseDescription {
     pub variable: String,
     pub units_in_file: String,
+    /// The temperature of the scene that a noise in K is given for.
+    #[serde(rename = "scene_K")]
+    pub scene: Option<f64>,
     /// The footprints' dimensions that it differs along.
     pub along: Vec<String>,
 }
@@ -253,6 +256,7 @@ impl BandDescription {
             noise: band.noise.as_ref().map(|noise| NoiseDescription {
                 variable: clean_text(&noise.variable),
                 units_in_file: clean_text(&noise.unit_text),
+                scene: noise.scene,
                 along: noise.along.iter().map(|&place| clean_text(&names[place])).collect(),
             }),
             calculated: granule.calculated(place).map(|found| CalculatedDescription {

@@ -103,7 +103,9 @@ fn print_band(band: &BandDescription, out: &mut impl Write) -> io::Result<()> {
             true => String::new(),
             false => format!(", for each {}", noise.along.join(", ")),
         };
-        writeln!(out, "    noise `{}` in {:?}{along}", noise.variable, noise.units_in_file)?;
+        let scene = noise.scene.map(|kelvin| format!(", of a scene of {} K", number(kelvin)));
+        let scene = scene.unwrap_or_default();
+        writeln!(out, "    noise `{}` in {:?}{scene}{along}", noise.variable, noise.units_in_file)?;
     }
     if let Some(calculated) = &band.calculated {
         let file = calculated.file.as_ref().map(|file| format!(" of {file}")).unwrap_or_default();
