@@ -36,6 +36,9 @@ pub enum Refusal {
     /// There is nothing to redo.
     #[error("nothing to redo")]
     NothingToRedo,
+    /// An undo is not taken back by itself.
+    #[error("this is an undo: choose the decision itself")]
+    UndoNotTurned,
     /// Words are needed and there are none.
     #[error("say why: {0} needs a reason")]
     NoReason(&'static str),
@@ -204,6 +207,36 @@ impl Record {
                 Err(Refusal::UnknownFlag { name: flag.to_owned(), known: names.join(", ") })
             }
         }
+    }
+
+    /// Takes a decision back, whoever made it, or puts back one that was taken back. Returns whether
+    /// it was taken back, and the decision.
+    ///
+    /// # Errors
+    /// There is no such decision, or it is an undo: what that takes back is put back by its own name.
+    pub fn turn(&mut self, id: &DecisionId, now: Timestamp) -> Result<(bool, Decision), Refusal> {
+        let named = self.decisions().iter().zip(self.standing()).rev();
+        let found = named.clone().find(|(one, _)| one.id == *id);
+        let Some((decision, stands)) = found.map(|(one, stands)| (one.clone(), *stands)) else {
+            return Err(Refusal::NothingToUndo);
+        };
+        if matches!(decision.act, Act::Revoke { .. }) {
+            return Err(Refusal::UndoNotTurned);
+        }
+        if stands {
+            self.decide(Act::Revoke { decision: id.clone() }, None, now);
+            return Ok((true, decision));
+        }
+        // All undos of it that stand have to go, or it would stay taken back.
+        let undos: Vec<DecisionId> = named
+            .filter(|(_, stands)| **stands)
+            .filter(|(one, _)| matches!(&one.act, Act::Revoke { decision } if decision == id))
+            .map(|(one, _)| one.id.clone())
+            .collect();
+        for undo in undos {
+            self.decide(Act::Revoke { decision: undo }, None, now);
+        }
+        Ok((false, decision))
     }
 
     /// The decision that an undo or a redo takes back or puts back; another decision itself.

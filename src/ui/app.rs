@@ -16,6 +16,7 @@ use super::colour::{Theme, Tone};
 use super::event::Ending;
 use super::keymap::Keymap;
 use super::keys::Action;
+use super::ledger::LedgerLook;
 use super::line::History;
 use super::overlay::{Deed, Overlay};
 use super::panes::{Arrangement, Pane, ScreenLayout};
@@ -93,6 +94,8 @@ pub struct App {
     pub panes: Arrangement,
     /// What lies over the panes.
     pub overlay: Overlay,
+    /// How one goes through the Ledger.
+    pub ledger: LedgerLook,
     /// Lines of the Evidence that are scrolled away.
     pub evidence_scroll: usize,
     /// What happened last.
@@ -145,6 +148,7 @@ impl App {
             left: Vec::new(),
             panes: Arrangement::default(),
             overlay: Overlay::None,
+            ledger: LedgerLook::default(),
             evidence_scroll: 0,
             message: (String::new(), Tone::Plain),
             history: History::default(),

@@ -266,6 +266,7 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('3')], Action::Pane(Pane::Trace), "trace", Program, "to the Trace"),
     row(&[letter('5')], Action::Pane(Pane::Strip), "strip", Program, "to the Strip"),
     row(&[letter('6')], Action::Pane(Pane::Evidence), "evidence", Program, "to the Evidence"),
+    row(&[letter('7')], Action::Pane(Pane::Ledger), "ledger", Program, "to the Ledger"),
     row(&[letter('z')], Action::Maximise, "maximise", Program, "one pane on the whole screen"),
     row(&[letter(':')], Action::Command, "command", Program, "command line, Tab completes"),
     row(&[letter('!')], Action::Problems, "problems", Program, "problems found in the file"),

@@ -31,6 +31,7 @@ pub mod keymap;
 pub mod keys;
 #[cfg(test)]
 mod keys_document;
+mod ledger;
 mod line;
 mod looking;
 mod moving;

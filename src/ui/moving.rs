@@ -5,6 +5,7 @@ use super::colour::Tone;
 use super::event::{Button, Mouse};
 use super::jobs::Job;
 use super::keys::Action;
+use super::ledger;
 use super::looking;
 use super::panes::Pane;
 use super::picking;
@@ -16,6 +17,9 @@ const PAGE: usize = 10;
 /// One step of the cursor.
 pub fn step(app: &mut App, action: Action) -> Vec<Job> {
     if app.focus() == Pane::Tray && in_tray(app, action) {
+        return Vec::new();
+    }
+    if app.focus() == Pane::Ledger && ledger::step(app, action) {
         return Vec::new();
     }
     if app.focus() == Pane::Evidence && in_evidence(app, action) {

@@ -8,8 +8,8 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, deciding, doubting, looking, moving, picking, prompts, screening, tracing, turning,
-    typing,
+    answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, tracing,
+    turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -66,6 +66,8 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
     match action {
         A::Up | A::Down | A::Left | A::Right | A::PageUp | A::PageDown => moving::step(app, action),
         A::RowStart | A::RowEnd | A::First | A::Last => moving::step(app, action),
+        A::Open if app.focus() == Pane::Ledger => ledger::switch(app),
+        A::Withdraw if app.focus() == Pane::Ledger => ledger::take_back(app),
         A::NextGranule | A::PreviousGranule | A::NextUnsigned | A::Open => {
             turning::turn(app, action)
         }

@@ -40,6 +40,32 @@ fn undo_goes_back_in_time_from_granule_to_granule_and_redo_comes_back() {
 }
 
 #[test]
+fn the_ledger_shows_and_takes_back_any_decision() {
+    let place = Place::with(&["a.nc"]);
+    let mut bo = place.review_by("bo", &["a.nc"]);
+    bo.keys("f c Right f s");
+    let mut trial = place.review(&["a.nc"]);
+    trial.types(":flag bad_spectrum spikes").keys("Enter 7");
+    let screen = trial.screen(120, 40);
+    for words in ["Ledger (0, 0) 2", "bo cloudy at 1", "ada bad_spectrum at 1 (spikes)"] {
+        assert!(screen.contains(words), "{words}: {screen}");
+    }
+    assert!(!screen.contains("so2"), "that was about another footprint");
+    trial.keys("Enter");
+    assert!(trial.screen(120, 40).contains("bo so2 at 1"), "{}", trial.screen(120, 40));
+    // The newest comes first: spikes, so2, cloudy.
+    trial.keys("Down Down w");
+    assert_eq!(trial.message(), "taken back: cloudy at 1 by bo");
+    assert!(trial.flagged("cloudy").is_empty());
+    assert!(trial.screen(120, 40).contains("x bo cloudy at 1"));
+    trial.keys("Down w");
+    assert_eq!(trial.message(), "put back: cloudy at 1 by bo");
+    assert_eq!(trial.flagged("cloudy"), [0]);
+    trial.keys("g w");
+    assert!(trial.message().starts_with("this is an undo"), "{}", trial.message());
+}
+
+#[test]
 fn after_a_restart_too() {
     let place = two_granules();
     let mut trial = place.review(&NAMES);

@@ -7,6 +7,7 @@ pub mod command;
 pub mod evidence;
 pub mod field;
 pub mod help;
+pub mod ledger;
 pub mod margin_bar;
 pub mod messages;
 pub mod prompt;

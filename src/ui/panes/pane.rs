@@ -15,6 +15,8 @@ pub enum Pane {
     Strip,
     /// What is known of the footprint under the cursor.
     Evidence,
+    /// Who decided what, when and why.
+    Ledger,
 }
 
 /// What the table says of a pane.
@@ -31,12 +33,13 @@ const fn row(pane: Pane, name: &'static str, parts: [Part; 3]) -> Row {
 
 /// Panes that share a part of the screen take turns there: the first stands there until another is
 /// asked for.
-const ROWS: [Row; 5] = [
+const ROWS: [Row; 6] = [
     row(Pane::Tray, "Tray", [Part::Left; 3]),
     row(Pane::Field, "Field", [Part::Middle; 3]),
     row(Pane::Trace, "Trace", [Part::Bottom; 3]),
     row(Pane::Strip, "Strip", [Part::Bottom, Part::Corner, Part::Second]),
     row(Pane::Evidence, "Evidence", [Part::Right; 3]),
+    row(Pane::Ledger, "Ledger", [Part::Right, Part::Right, Part::Third]),
 ];
 
 impl Pane {

@@ -15,7 +15,7 @@ use crate::ui::panes::Pane;
 use crate::ui::panes::evidence::{self, EvidenceRow, EvidenceView};
 
 /// Decisions about one footprint that are shown; the latest count most.
-const MOST_DECISIONS: usize = 6;
+const MOST_DECISIONS: usize = 2;
 
 /// Draws the Evidence.
 pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {

@@ -6,6 +6,7 @@ mod evidence;
 mod field;
 mod field_signs;
 mod help;
+mod ledger;
 mod overlay;
 mod status;
 mod strip;
@@ -40,6 +41,7 @@ pub fn draw_pane(app: &App, pane: Pane, area: Rect, buffer: &mut Buffer) {
         Pane::Trace => trace::draw,
         Pane::Strip => strip::draw,
         Pane::Evidence => evidence::draw,
+        Pane::Ledger => ledger::draw,
     };
     draw(app, area, buffer);
 }

@@ -86,6 +86,15 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
             (Action::Invert, "invert"),
             (Action::Cancel, "let go"),
         ]
+    } else if app.focus() == Pane::Ledger {
+        &[
+            (Action::Withdraw, "take back or put back"),
+            (Action::Open, "granule or footprint"),
+            (Action::Down, "down"),
+            (Action::Up, "up"),
+            (Action::NextPane, "pane"),
+            (Action::Help, "help"),
+        ]
     } else if app.focus() == Pane::Tray {
         &[
             (Action::Open, "open"),

@@ -1,0 +1,81 @@
+//! Going through what was decided, and taking any of it back.
+
+use crate::flags::{Act, Decision};
+
+use super::app::App;
+use super::deciding::{self, words};
+use super::jobs::Job;
+use super::keys::Action;
+use super::looking::no_granule;
+
+/// How one goes through the Ledger.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct LedgerLook {
+    /// All decisions about the granule, instead of those about the footprint under the cursor.
+    pub whole: bool,
+    /// The row in hand, 0 for the newest.
+    pub cursor: usize,
+}
+
+/// Rows that a page moves.
+const PAGE: usize = 10;
+
+/// The decisions on show, by their place in the record, the newest first.
+pub fn rows_on_show(app: &App) -> Vec<usize> {
+    let Some(bench) = app.bench() else { return Vec::new() };
+    let Some(record) = bench.record.open() else { return Vec::new() };
+    let about = |decision: &Decision| {
+        // What was undone is about what the undo takes back.
+        let meant = record.meant_by(decision).unwrap_or(decision);
+        app.ledger.whole
+            || matches!(meant.act, Act::SetAside | Act::Reopen | Act::SignOff { .. })
+            || meant.act.footprints().is_some_and(|set| set.contains(bench.cursor))
+    };
+    let all = record.decisions().iter().enumerate().rev();
+    all.filter(|(_, decision)| about(decision)).map(|(place, _)| place).collect()
+}
+
+/// Moves the row in hand; false for keys that mean nothing here. Left and right move the footprint.
+pub fn step(app: &mut App, action: Action) -> bool {
+    let last = rows_on_show(app).len().saturating_sub(1);
+    let here = app.ledger.cursor.min(last);
+    app.ledger.cursor = match action {
+        Action::Up => here.saturating_sub(1),
+        Action::Down => here + 1,
+        Action::PageUp => here.saturating_sub(PAGE),
+        Action::PageDown => here + PAGE,
+        Action::First => 0,
+        Action::Last => last,
+        _ => return false,
+    }
+    .min(last);
+    true
+}
+
+/// Shows the decisions about the whole granule, or those about the footprint again.
+pub fn switch(app: &mut App) -> Vec<Job> {
+    app.ledger = LedgerLook { whole: !app.ledger.whole, cursor: 0 };
+    app.say(match app.ledger.whole {
+        true => "all decisions about the granule",
+        false => "the decisions about the footprint under the cursor",
+    });
+    Vec::new()
+}
+
+/// Takes the decision in hand back, whoever made it; one that was taken back is put back.
+pub fn take_back(app: &mut App) -> Vec<Job> {
+    let rows = rows_on_show(app);
+    let Some(bench) = app.bench() else { return no_granule(app) };
+    let Some(record) = bench.record.open() else { return deciding::not_ready(app) };
+    let cursor = app.ledger.cursor.min(rows.len().saturating_sub(1));
+    let Some(decision) = rows.get(cursor).and_then(|place| record.decisions().get(*place)) else {
+        app.warn("no decision is here to be taken back");
+        return Vec::new();
+    };
+    let id = decision.id.clone();
+    deciding::change(app, |record, now| {
+        let (taken, decision) = record.turn(&id, now)?;
+        let verb = if taken { "taken back" } else { "put back" };
+        Ok(format!("{verb}: {} by {}", words(&decision), decision.speaker()))
+    })
+}
