@@ -77,8 +77,10 @@ impl Review {
             count: vec![0.0; channels],
             sampled: Vec::new(),
         };
+        let mut values = Vec::new();
         for (turn, footprint) in footprints.iter().enumerate() {
-            let mut values = self.granule().read_spectrum(band, footprint)?;
+            // Read with those beside it where it is not in memory.
+            self.granule().values(band, footprint, None, &mut values)?;
             if matches!(here.quantity, Quantity::BrightnessTemperature(_)) {
                 for (value, wavenumber) in values.iter_mut().zip(here.axis.wavenumbers()) {
                     *value = planck(*wavenumber, *value);
