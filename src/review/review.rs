@@ -73,15 +73,14 @@ impl Review {
     }
 
     /// Runs the tests of a rulebook, and examines the spectra as a set; what has not been read yet is
-    /// read before. A granule that does not fit into memory is read as the tests need it, and only what
-    /// is in memory is examined.
+    /// read before, as far as it fits into memory, and the rest whenever it is needed.
     ///
     /// # Errors
     /// The file can't be read, or `cancel` was asked for.
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
         self.granule.fill(cancel, &mut |_| {})?;
         let screened = self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))?;
-        let examined = examine(&self.granule, &self.cube, &rulebook.health);
+        let examined = examine(&self.granule, &rulebook.health, cancel)?;
         Ok(Screened { examined: Some(examined), ..screened })
     }
 

@@ -7,13 +7,14 @@ use super::detectors::{DetectorNumbers, detectors, sweep, sweep_difference, wind
 use super::finding::{Check, Finding, Limit, Subject};
 use super::grid::ScanGrid;
 use super::limits::HealthLimits;
-use super::readings::BandReadings;
+use super::readings::{BandReadings, Spectra};
 use super::repeats::repeated_spectra;
 use super::sample::Sample;
 use super::spectra::{SpectraCheck, SpectrumReading};
-use crate::granule::{Apodisation, Cube, Granule};
+use crate::granule::{Apodisation, Granule, GranuleError};
 use crate::screening::unusual::{Basis, Fitted, fit};
 use crate::spectral::{HAMMING_NOISE_FACTOR, median};
+use crate::system::Cancel;
 
 /// What the spectra of a granule say as a set.
 #[derive(Debug, Clone)]
@@ -94,10 +95,24 @@ pub struct UnusualSpectrum {
     pub channels: Vec<(f64, f64)>,
 }
 
-/// Examines the bands of which everything has been read.
-pub fn examine(granule: &Granule, cube: &Cube, limits: &HealthLimits) -> Examined {
+/// Examines all bands. What is not in memory is read, more than once.
+///
+/// # Errors
+/// The file can't be read, or `cancel` was asked for.
+pub fn examine(
+    granule: &Granule,
+    limits: &HealthLimits,
+    cancel: &Cancel,
+) -> Result<Examined, GranuleError> {
+    let spectra = Spectra::new(granule, cancel);
+    let examined = granule.at_work(|| examine_all(granule, &spectra, limits));
+    spectra.fault()?;
+    Ok(examined)
+}
+
+fn examine_all(granule: &Granule, spectra: &Spectra<'_>, limits: &HealthLimits) -> Examined {
     let grid = ScanGrid::of(granule.footprints());
-    let readings = BandReadings::of(granule, cube);
+    let readings = BandReadings::of(spectra);
     let bands: Vec<BandWork<'_>> = readings
         .par_iter()
         .map(|readings| BandWork::of(*readings, nedn(granule, readings, &grid), &grid, limits))

@@ -1,31 +1,65 @@
-//! Radiances of one band out of the cube, whatever the file keeps.
+//! Radiances of one band, whatever the file keeps.
 
-use crate::granule::{Band, Cube, Granule, Quantity};
+use std::sync::OnceLock;
+
+use crate::granule::{Band, Granule, GranuleError, Quantity};
 use crate::spectral::planck;
+use crate::system::Cancel;
 
-/// One band of a granule that has been read.
+/// Reads the spectra of a granule: out of memory, or from the file where they do not fit into it.
+#[derive(Debug)]
+pub struct Spectra<'g> {
+    granule: &'g Granule,
+    cancel: &'g Cancel,
+    fault: OnceLock<GranuleError>,
+}
+
+impl<'g> Spectra<'g> {
+    /// Reads until `cancel` is asked for.
+    pub fn new(granule: &'g Granule, cancel: &'g Cancel) -> Self {
+        Self { granule, cancel, fault: OnceLock::new() }
+    }
+
+    /// Missing where they cannot be read, and from then on.
+    fn values(&self, band: usize, footprint: usize, out: &mut Vec<f64>) {
+        let read = match (self.fault.get(), self.cancel.is_cancelled()) {
+            (None, false) => self.granule.values(band, footprint, Some(self.cancel), out),
+            _ => Err(GranuleError::Cancelled),
+        };
+        if let Err(error) = read {
+            // What could not be read first is told.
+            let _ = self.fault.set(error);
+            out.clear();
+            out.resize(self.granule.bands()[band].channels(), f64::NAN);
+        }
+    }
+
+    /// What could not be read, if anything.
+    pub fn fault(self) -> Result<(), GranuleError> {
+        self.fault.into_inner().map_or(Ok(()), Err)
+    }
+}
+
+/// One band of a granule.
 #[derive(Debug, Clone, Copy)]
 pub struct BandReadings<'g> {
     /// The band.
     pub band: &'g Band,
     /// Its place in the granule.
     pub number: usize,
-    cube: &'g Cube,
+    spectra: &'g Spectra<'g>,
 }
 
 impl<'g> BandReadings<'g> {
-    /// The bands of a granule of which everything has been read.
-    pub fn of(granule: &'g Granule, cube: &'g Cube) -> Vec<Self> {
-        let bands = granule.bands().iter().enumerate();
-        bands
-            .filter(|(number, _)| cube.is_complete(*number))
-            .map(|(number, band)| Self { band, number, cube })
-            .collect()
+    /// The bands of a granule.
+    pub fn of(spectra: &'g Spectra<'g>) -> Vec<Self> {
+        let bands = spectra.granule.bands().iter().enumerate();
+        bands.map(|(number, band)| Self { band, number, spectra }).collect()
     }
 
     /// A footprint's radiances, mW m-2 sr-1 (cm-1)-1, in the order of the file; missing as NaN.
     pub fn radiances(&self, footprint: usize, out: &mut Vec<f64>) {
-        self.cube.values(self.number, footprint, out);
+        self.spectra.values(self.number, footprint, out);
         if self.in_kelvin() {
             for (value, wavenumber) in out.iter_mut().zip(self.band.axis.wavenumbers()) {
                 *value = planck(*wavenumber, *value);
