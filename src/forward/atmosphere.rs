@@ -63,6 +63,30 @@ impl Atmosphere {
         Atmosphere { levels }
     }
 
+    /// Air of levels that are complete, from the ground upward.
+    pub(super) fn from_levels(levels: Vec<Level>) -> Atmosphere {
+        Atmosphere { levels }
+    }
+
+    /// The air at a pressure (hPa): linear in the logarithm of the pressure.
+    pub(super) fn level_at_pressure(&self, pressure: f64) -> Level {
+        let above = self.levels.partition_point(|level| level.pressure > pressure);
+        let upper = above.clamp(1, self.levels.len() - 1);
+        let (low, high) = (&self.levels[upper - 1], &self.levels[upper]);
+        let share =
+            ((low.pressure / pressure).ln() / (low.pressure / high.pressure).ln()).clamp(0.0, 1.0);
+        let mix = |low: f64, high: f64| low + share * (high - low);
+        let mut level = *low;
+        level.height = mix(low.height, high.height);
+        level.pressure = pressure;
+        level.temperature = mix(low.temperature, high.temperature);
+        let amounts = low.mixing_ratio.iter().zip(&high.mixing_ratio);
+        for (amount, (low, high)) in level.mixing_ratio.iter_mut().zip(amounts) {
+            *amount = mix(*low, *high);
+        }
+        level
+    }
+
     /// Levels from the ground upward.
     pub fn levels(&self) -> &[Level] {
         &self.levels

@@ -8,6 +8,7 @@ use super::indices::INDICES;
 use super::kept::Kept;
 use super::names::{Judgements, NameError, Names, Values};
 use super::neighbours::Neighbours;
+use super::retrieval::Retrieval;
 use super::syntax::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, Judgement};
 use super::unit::LayerUnit;
 use super::whole_granule::WholeGranule;
@@ -26,6 +27,7 @@ pub struct GranuleNames<'g> {
     whole: Option<WholeGranule<'g>>,
     definitions: Option<&'g BTreeMap<String, Expression>>,
     judgements: Option<&'g dyn Judgements>,
+    retrievals: &'g [&'g dyn Retrieval],
     /// One for each footprint, or none at all.
     left_out: &'g [bool],
     kept: Option<&'g Kept>,
@@ -41,6 +43,7 @@ impl<'g> GranuleNames<'g> {
             whole: None,
             definitions: None,
             judgements: None,
+            retrievals: &[],
             left_out: &[],
             kept: None,
             own: Kept::default(),
@@ -56,6 +59,12 @@ impl<'g> GranuleNames<'g> {
     /// With what screening tests said.
     pub fn with_judgements(mut self, judgements: Option<&'g dyn Judgements>) -> Self {
         self.judgements = judgements;
+        self
+    }
+
+    /// With names for what retrievals work out.
+    pub fn with_retrievals(mut self, retrievals: &'g [&'g dyn Retrieval]) -> Self {
+        self.retrievals = retrievals;
         self
     }
 
@@ -109,6 +118,8 @@ impl<'g> GranuleNames<'g> {
         let variables =
             self.granule.all_variables().map(|variable| format!("var(\"{}\")", variable.name));
         let indices = INDICES.iter().map(|index| index.name.to_owned());
+        let retrieved = self.retrievals.iter().flat_map(|one| one.outputs());
+        let indices = indices.chain(retrieved.map(|(name, _)| (*name).to_owned()));
         friendly.chain(defined).chain(indices).chain(dimensions).chain(variables).collect()
     }
 
@@ -261,8 +272,12 @@ impl Names for GranuleNames<'_> {
         }
     }
 
-    fn cluster(&self) -> usize {
-        self.granule.footprints().lengths().iter().skip(2).product()
+    fn lengths(&self) -> &[usize] {
+        self.granule.footprints().lengths()
+    }
+
+    fn retrievals(&self) -> &[&dyn Retrieval] {
+        self.retrievals
     }
 
     fn neighbours(&self) -> &Neighbours {

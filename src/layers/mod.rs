@@ -13,6 +13,7 @@ mod indices;
 mod kept;
 mod names;
 mod neighbours;
+mod retrieval;
 mod syntax;
 mod unit;
 mod whole_granule;
@@ -25,6 +26,7 @@ pub use indices::INDICES;
 pub use kept::Kept;
 pub use names::{Judgements, NameError, Names, Values};
 pub use neighbours::Neighbours;
+pub use retrieval::{Input, Retrieval};
 pub use syntax::{
     DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Judgement, Mistake,
     functions,

@@ -3,6 +3,7 @@
 use std::ops::Range;
 
 use super::neighbours::Neighbours;
+use super::retrieval::Retrieval;
 use super::syntax::{Expression, Judgement};
 use super::unit::LayerUnit;
 use crate::granule::Channel;
@@ -151,9 +152,17 @@ pub trait Names: Sync {
     /// No tests have been run, or there is no such flag or test.
     fn judged(&self, judgement: Judgement, of: Option<&str>) -> Result<Values, NameError>;
 
+    /// Lengths of the footprint dimensions, slowest first.
+    fn lengths(&self) -> &[usize];
+
+    /// The retrievals whose results are names.
+    fn retrievals(&self) -> &[&dyn Retrieval];
+
     /// How many footprints in a row are the detectors at one scan line and position; 1 where
     /// footprints do not stand in clusters.
-    fn cluster(&self) -> usize;
+    fn cluster(&self) -> usize {
+        self.lengths().iter().skip(2).product()
+    }
 
     /// Which footprints lie beside which.
     fn neighbours(&self) -> &Neighbours;

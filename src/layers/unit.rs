@@ -13,6 +13,8 @@ pub enum LayerUnit {
     Radiance,
     /// An angle, degrees.
     Degree,
+    /// A pressure, hPa.
+    Hectopascal,
     /// A pure number.
     One,
     /// 1 for true, 0 for false.
@@ -32,6 +34,7 @@ impl LayerUnit {
             Self::Kelvin | Self::KelvinDifference => "K",
             Self::Radiance => "mW m-2 sr-1 (cm-1)-1",
             Self::Degree => "degrees",
+            Self::Hectopascal => "hPa",
             Self::Time => "s since 1970-01-01 UTC",
             Self::Truth => "1 true, 0 false",
             Self::One | Self::Index | Self::Unknown => "",
@@ -69,6 +72,7 @@ impl LayerUnit {
             Self::Kelvin | Self::KelvinDifference => Some("temperature"),
             Self::Radiance => Some("radiance"),
             Self::Degree => Some("angle"),
+            Self::Hectopascal => Some("pressure"),
             Self::Time => Some("time"),
             Self::One | Self::Truth | Self::Index | Self::Unknown => None,
         }

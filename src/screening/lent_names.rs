@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 use std::ops::Range;
 
 use crate::granule::Channel;
-use crate::layers::{Expression, Judgement, NameError, Names, Neighbours, Values};
+use crate::layers::{Expression, Judgement, NameError, Names, Neighbours, Retrieval, Values};
 
 /// Names with the definitions of a rulebook in place of their own.
 pub struct LentNames<'n> {
@@ -71,8 +71,12 @@ impl Names for LentNames<'_> {
         self.names.judged(judgement, of)
     }
 
-    fn cluster(&self) -> usize {
-        self.names.cluster()
+    fn lengths(&self) -> &[usize] {
+        self.names.lengths()
+    }
+
+    fn retrievals(&self) -> &[&dyn Retrieval] {
+        self.names.retrievals()
     }
 
     fn neighbours(&self) -> &Neighbours {

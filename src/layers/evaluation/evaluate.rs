@@ -1,6 +1,6 @@
 //! Evaluation over all footprints of a granule.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use super::error::LayerError;
 use super::gather::{Column, gather};
@@ -11,6 +11,7 @@ use super::program::Source;
 use crate::granule::Channel;
 use crate::layers::names::Names;
 use crate::layers::neighbours::{cluster, neighbourhood};
+use crate::layers::retrieval::Retrieval;
 use crate::layers::syntax::{Around, Expression};
 
 /// The numbers of one expression.
@@ -58,6 +59,8 @@ struct Work {
 impl Work {
     fn done(plan: &Plan, names: &dyn Names) -> Self {
         let mut work = Self { leaves: gather(&plan.leaves, names), steps: Vec::new() };
+        // Each retrieval runs once, however many of its results are asked for.
+        let mut retrieved: BTreeMap<usize, Vec<Vec<f64>>> = BTreeMap::new();
         for step in &plan.steps {
             let column = match step {
                 Step::Pointwise(program) => {
@@ -69,10 +72,25 @@ impl Work {
                 Step::Neighbourhood(statistic, Around::Cluster, source) => {
                     cluster(*statistic, work.column(*source), names.cluster())
                 }
+                Step::Retrieval { retrieval, inputs, output } => {
+                    let run = || work.retrieve(names.retrievals()[*retrieval], inputs, names);
+                    retrieved.entry(*retrieval).or_insert_with(run)[*output].clone()
+                }
             };
             work.steps.push(column);
         }
         work
+    }
+
+    fn retrieve(
+        &self,
+        retrieval: &dyn Retrieval,
+        inputs: &[Option<Source>],
+        names: &dyn Names,
+    ) -> Vec<Vec<f64>> {
+        let inputs: Vec<Option<&[f64]>> =
+            inputs.iter().map(|source| source.map(|source| self.column(source))).collect();
+        retrieval.run(names.lengths(), &inputs)
     }
 
     fn layer(

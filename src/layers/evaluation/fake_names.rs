@@ -6,6 +6,7 @@ use std::ops::Range;
 use crate::granule::Channel;
 use crate::layers::names::{NameError, Names, Values};
 use crate::layers::neighbours::Neighbours;
+use crate::layers::retrieval::Retrieval;
 use crate::layers::syntax::{Expression, Judgement};
 use crate::layers::unit::LayerUnit;
 use crate::spectral::{brightness_temperature_or_nan, planck};
@@ -17,6 +18,7 @@ pub struct FakeNames {
     pub temperatures: bool,
     pub named: HashMap<String, Vec<f64>>,
     pub definitions: HashMap<String, Expression>,
+    pub retrievals: Vec<&'static dyn Retrieval>,
     neighbours: Neighbours,
 }
 
@@ -31,6 +33,7 @@ impl FakeNames {
             temperatures: false,
             named: HashMap::new(),
             definitions: HashMap::new(),
+            retrievals: Vec::new(),
             neighbours: Neighbours::by_array(lengths),
         }
     }
@@ -130,8 +133,12 @@ impl Names for FakeNames {
         Err(NameError::NotJudged(judgement.word()))
     }
 
-    fn cluster(&self) -> usize {
-        self.lengths.iter().skip(2).product()
+    fn lengths(&self) -> &[usize] {
+        &self.lengths
+    }
+
+    fn retrievals(&self) -> &[&dyn Retrieval] {
+        &self.retrievals
     }
 
     fn neighbours(&self) -> &Neighbours {

@@ -7,6 +7,7 @@ mod gather;
 mod layer;
 mod leaves;
 mod plan;
+mod plan_ends;
 mod program;
 
 #[cfg(test)]

@@ -6,9 +6,9 @@ use super::definitions;
 use super::error::LayerError;
 use super::leaves::Leaf;
 use super::program::{Operation, Program, Source};
-use crate::layers::names::{NameError, Names, Values};
+use crate::layers::names::{NameError, Names};
 use crate::layers::syntax::{
-    Around, Expression, Function, Infix, Kind, Node, Prefix, Quantity, Span, Statistic, Where,
+    Around, Expression, Function, Infix, Kind, Node, Prefix, Span, Statistic,
 };
 use crate::layers::unit::LayerUnit;
 use crate::system::clean_text;
@@ -20,6 +20,8 @@ pub enum Step {
     Pointwise(Program),
     /// Over the footprints around each.
     Neighbourhood(Statistic, Around, Source),
+    /// A result of a retrieval: which of them, from which columns, which result.
+    Retrieval { retrieval: usize, inputs: Vec<Option<Source>>, output: usize },
 }
 
 /// Where an expression's numbers come out.
@@ -67,20 +69,21 @@ impl Plan {
     }
 }
 
-struct Planner<'n> {
-    names: &'n dyn Names,
-    leaves: Vec<Leaf>,
-    steps: Vec<Step>,
-    definitions: HashMap<String, Result<Output, LayerError>>,
+/// A plan in the making.
+pub struct Planner<'n> {
+    pub names: &'n dyn Names,
+    pub leaves: Vec<Leaf>,
+    pub steps: Vec<Step>,
+    pub definitions: HashMap<String, Result<Output, LayerError>>,
 }
 
 /// One expression on its way.
-struct Draft<'t> {
-    text: &'t str,
+pub struct Draft<'t> {
+    pub text: &'t str,
     program: Program,
     leaves: Vec<usize>,
-    neighbours: bool,
-    remarks: Vec<String>,
+    pub neighbours: bool,
+    pub remarks: Vec<String>,
 }
 
 impl<'n> Planner<'n> {
@@ -92,7 +95,7 @@ impl<'n> Planner<'n> {
         Plan { leaves: self.leaves, steps: self.steps }
     }
 
-    fn output(&mut self, expression: &Expression) -> Result<Output, LayerError> {
+    pub fn output(&mut self, expression: &Expression) -> Result<Output, LayerError> {
         for (name, definition) in definitions::in_order(&[expression], self.names)? {
             if !self.definitions.contains_key(&name) {
                 let output = self.expression(definition);
@@ -104,7 +107,7 @@ impl<'n> Planner<'n> {
 
     /// What a failed expression had already asked for is taken back.
     fn expression(&mut self, expression: &Expression) -> Result<Output, LayerError> {
-        let before = (self.leaves.len(), self.steps.len());
+        let before = (self.leaves.len(), self.steps.len(), self.definitions.len());
         let mut draft = Draft::of(expression.text());
         match self.node(expression.tree(), &mut draft) {
             Ok(unit) => {
@@ -113,8 +116,11 @@ impl<'n> Planner<'n> {
                 Ok(Output { source, unit, leaves, neighbours, remarks })
             }
             Err(error) => {
-                self.leaves.truncate(before.0);
-                self.steps.truncate(before.1);
+                // A definition that a retrieval needed stays, and so must what it is made from.
+                if self.definitions.len() == before.2 {
+                    self.leaves.truncate(before.0);
+                    self.steps.truncate(before.1);
+                }
                 Err(error)
             }
         }
@@ -223,101 +229,6 @@ impl<'n> Planner<'n> {
         })
     }
 
-    fn name(
-        &mut self,
-        name: &str,
-        span: &Span,
-        draft: &mut Draft<'_>,
-    ) -> Result<LayerUnit, LayerError> {
-        match self.definitions.get(name) {
-            Some(Ok(output)) => {
-                draft.uses(&output.leaves);
-                draft.neighbours |= output.neighbours;
-                draft.remarks.extend(output.remarks.iter().cloned());
-                draft.add(Operation::Load(output.source));
-                Ok(output.unit)
-            }
-            Some(Err(error)) => Err(error.clone()),
-            None => self.values(name.to_owned(), |names| names.named(name), span, draft),
-        }
-    }
-
-    fn values(
-        &mut self,
-        key: String,
-        ask: impl FnOnce(&dyn Names) -> Result<Values, NameError>,
-        span: &Span,
-        draft: &mut Draft<'_>,
-    ) -> Result<LayerUnit, LayerError> {
-        let known = self.leaves.iter().position(|leaf| match leaf {
-            Leaf::Named(name, _) => *name == key,
-            _ => false,
-        });
-        let at = match known {
-            Some(at) => at,
-            None => {
-                let values = ask(self.names)
-                    .map_err(|error| LayerError::of_name(draft.text, span, &error))?;
-                self.leaves.push(Leaf::Named(key, values));
-                self.leaves.len() - 1
-            }
-        };
-        draft.load(at);
-        Ok(match &self.leaves[at] {
-            Leaf::Named(_, values) => values.unit,
-            _ => LayerUnit::Unknown,
-        })
-    }
-
-    fn spectral(
-        &mut self,
-        quantity: Quantity,
-        place: &Where,
-        span: &Span,
-        draft: &mut Draft<'_>,
-    ) -> Result<LayerUnit, LayerError> {
-        let leaf = self
-            .channels(quantity, place)
-            .map_err(|error| LayerError::of_name(draft.text, span, &error))?;
-        let known = self.leaves.iter().position(|other| other.is_same(&leaf));
-        let at = known.unwrap_or_else(|| {
-            self.leaves.push(leaf);
-            self.leaves.len() - 1
-        });
-        draft.load(at);
-        Ok(match quantity {
-            Quantity::BrightnessTemperature => LayerUnit::Kelvin,
-            Quantity::Radiance => LayerUnit::Radiance,
-            Quantity::MissingShare => LayerUnit::One,
-        })
-    }
-
-    fn channels(&self, quantity: Quantity, place: &Where) -> Result<Leaf, NameError> {
-        match place {
-            Where::At(place) => {
-                Ok(Leaf::Channel(quantity, self.names.channel_near(place.wavenumber())?))
-            }
-            Where::Between(low, high) => {
-                let (low, high) = (low.wavenumber(), high.wavenumber());
-                let channels = self.names.channels_between(low, high);
-                if channels.is_empty() {
-                    return Err(self.no_channel_between(low, high));
-                }
-                Ok(Leaf::Interval { quantity, channels, width: high - low })
-            }
-        }
-    }
-
-    /// An interval without channels; the nearest one is found by asking for its middle.
-    fn no_channel_between(&self, low: f64, high: f64) -> NameError {
-        let nearest = match self.names.channel_near(0.5 * (low + high)) {
-            Ok(channel) => Some(channel.wavenumber),
-            Err(NameError::NoChannel { nearest, .. }) => nearest,
-            Err(_) => None,
-        };
-        NameError::NoChannelBetween { low, high, nearest }
-    }
-
     /// The column in which a program comes out.
     fn column(&mut self, program: Program) -> Source {
         program.only_loads().unwrap_or_else(|| {
@@ -347,16 +258,16 @@ impl<'t> Draft<'t> {
         }
     }
 
-    fn add(&mut self, operation: Operation) {
+    pub fn add(&mut self, operation: Operation) {
         self.program.0.push(operation);
     }
 
-    fn load(&mut self, leaf: usize) {
+    pub fn load(&mut self, leaf: usize) {
         self.uses(&[leaf]);
         self.add(Operation::Load(Source::Leaf(leaf)));
     }
 
-    fn uses(&mut self, leaves: &[usize]) {
+    pub fn uses(&mut self, leaves: &[usize]) {
         for leaf in leaves {
             if !self.leaves.contains(leaf) {
                 self.leaves.push(*leaf);
