@@ -55,7 +55,7 @@ fn mask_band(band: &Band) -> MaskBand {
     MaskBand {
         name: band.name.clone(),
         dimension: band.dimension.clone(),
-        axis_name: holds_wavenumbers.then(|| name.to_owned()),
+        axis_name: (holds_wavenumbers && !name.is_empty()).then(|| name.to_owned()),
         wavenumbers: band.axis.wavenumbers().to_vec(),
         apodisation: (band.apodisation != Apodisation::Unknown)
             .then(|| band.apodisation.label().to_owned()),

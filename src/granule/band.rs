@@ -59,6 +59,15 @@ impl Apodisation {
     }
 }
 
+/// A spectral axis by its first value and the step from channel to channel, in the axis's unit.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct AxisSteps {
+    /// Where the first channel lies.
+    pub first: f64,
+    /// How far each is from the one before.
+    pub step: f64,
+}
+
 /// A band of channels.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Band {
@@ -68,9 +77,11 @@ pub struct Band {
     pub variable: String,
     /// The channels' wavenumbers in the file's order.
     pub axis: ChannelAxis,
-    /// The path of the variable that gives the spectral axis.
+    /// The path of the variable that gives the spectral axis; empty where it is given by steps.
     pub axis_variable: String,
-    /// The unit of that variable.
+    /// The axis's first value and step, where it is given so.
+    pub axis_steps: Option<AxisSteps>,
+    /// The unit of that variable, or of the steps.
     pub axis_unit: SpectralUnit,
     /// The name of the spectral dimension in the file.
     pub dimension: String,
@@ -136,6 +147,7 @@ impl Band {
             variable: "b".into(),
             axis: ChannelAxis::new(wavenumbers.to_vec()).unwrap(),
             axis_variable: "nu".into(),
+            axis_steps: None,
             axis_unit: SpectralUnit::PerCentimetre,
             dimension: "nu".into(),
             quantity: Quantity::Radiance(RadianceUnit::WORKING),

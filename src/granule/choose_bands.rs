@@ -1,6 +1,7 @@
 //! Which variables become bands, and the footprints that they lie over.
 
 use super::apodisation;
+use super::axis_steps;
 use super::band::Band;
 use super::channel_quality;
 use super::error::{GranuleError, Setback};
@@ -11,7 +12,7 @@ use super::layout::{Layout, Role};
 use super::layout_file::LayoutFile;
 use super::named_variable::named_dimension;
 use super::problem::Problem;
-use super::spectral_axis;
+use super::spectral_axis::{self, AxisFrom};
 use crate::netcdf_files::{FileIndex, FileReader, Variable};
 
 /// The layout file and the file do not agree.
@@ -89,19 +90,39 @@ fn settle(
     let index = reader.index();
     let variable = &index.variables[candidate.variable];
     for axis_candidate in &candidate.axes {
+        let axis_candidate = &axis_steps::resolved(reader, axis_candidate)?;
         let Some((axis, unit)) = spectral_axis::read(reader, axis_candidate, problems)? else {
             continue;
         };
-        let axis_variable = &index.variables[axis_candidate.variable];
-        if axis_candidate.rank >= 3 {
-            let what =
-                format!("`{}` is taken for its spectral axis by its unit", axis_variable.path);
-            problems.push(Problem::guess(&what, &variable.path, "a standard_name would say it"));
+        let (axis_variable, axis_steps) = match axis_candidate.from {
+            AxisFrom::Variable(place) => (Some(&index.variables[place]), None),
+            AxisFrom::Steps(steps) => (None, Some(steps)),
+            AxisFrom::Numbers { .. } => (None, None),
+        };
+        let axis_path = axis_variable.map(|axis| axis.path.clone()).unwrap_or_default();
+        match axis_steps.filter(|_| axis_candidate.rank > 0) {
+            Some(steps) => {
+                let what = format!(
+                    "its spectral axis is taken along `{}` from {} in steps of {} {}, by their names",
+                    index.dimensions[axis_candidate.dimension].name,
+                    steps.first,
+                    steps.step,
+                    unit.label()
+                );
+                let advice = "a layout file would say it";
+                problems.push(Problem::guess(&what, &variable.path, advice));
+            }
+            None if axis_candidate.rank >= 3 => {
+                let what = format!("`{axis_path}` is taken for its spectral axis by its unit");
+                let advice = "a standard_name would say it";
+                problems.push(Problem::guess(&what, &variable.path, advice));
+            }
+            None => {}
         }
         if axis_candidate.look_alike {
             let what = format!(
                 "`{}` is taken for its spectral axis by the name and length of its dimension",
-                axis_variable.path
+                axis_path
             );
             problems.push(Problem::guess(&what, &variable.path, "a layout file would say it"));
         }
@@ -109,14 +130,18 @@ fn settle(
         let band = Band {
             name: said.name.as_deref().map(find_bands::valid_name).unwrap_or_default(),
             variable: variable.path.clone(),
-            axis_variable: axis_variable.path.clone(),
+            axis_variable: axis_path,
+            axis_steps,
             axis_unit: unit,
             dimension: index.dimensions[axis_candidate.dimension].name.clone(),
             quantity: candidate.quantity.clone(),
             unit_text: said.unit.or_else(|| variable.text("units")).unwrap_or_default(),
             apodisation: match &said.apodisation {
                 Some(words) => apodisation::from_words(words),
-                None => apodisation::find(index, variable, axis_variable, problems),
+                None => {
+                    let axis = axis_variable.unwrap_or(variable);
+                    apodisation::find(index, variable, axis, problems)
+                }
             },
             bad: bad_channels(
                 axis.len(),
@@ -176,7 +201,9 @@ fn join(
         }
         return Ok(());
     };
-    let same_axis = |(_, other): &&(BandSource, Band)| other.axis_variable == band.axis_variable;
+    let same_axis = |(_, other): &&(BandSource, Band)| {
+        (&other.axis_variable, other.axis_steps) == (&band.axis_variable, band.axis_steps)
+    };
     let twice = chosen.bands.iter().find(same_axis).filter(|_| candidate.said.is_none());
     if let Some((_, other)) = twice {
         let what = format!("`{}` has the same channels", other.variable);

@@ -1,6 +1,6 @@
 //! What is found without a layout file: parts in sibling groups, noise, bad channels, odd axes.
 
-use super::tests::{Opened, UNIT, axis, has_problem, open, opened, plain, put, radiance};
+use super::tests::{Opened, UNIT, axis, file, has_problem, open, opened, plain, put, radiance};
 use super::*;
 use crate::netcdf_files::{NetcdfWriter, ValueKind, VariableDraft};
 
@@ -85,6 +85,56 @@ fn a_unit_that_cannot_be_used_is_refused_with_what_would_be_accepted() {
     let error = open(&file.path).unwrap_err().to_string();
     assert!(error.contains("\"counts\""), "{error}");
     assert!(error.contains(UNIT), "{error}");
+}
+
+/// A granule of 2 lines, 2 detectors and 3 channels with an axis for each detector.
+fn by_detector(writer: &mut NetcdfWriter, axis: &[f64]) {
+    for (name, length) in [("line", 2), ("detector", 2), ("nu", 3)] {
+        writer.dimension(name, length).unwrap();
+    }
+    let places = VariableDraft::new("wavenumber", ValueKind::F64, &["detector", "nu"]);
+    put(writer, places.attribute("units", "cm-1"), axis.to_vec());
+    let values: Vec<f32> = (0..12_u8).map(f32::from).collect();
+    put(writer, radiance("radiance", &["line", "detector", "nu"], UNIT), values);
+}
+
+#[test]
+fn an_axis_for_each_detector_is_one_where_all_agree_and_refused_where_not() {
+    let same = [900.0, 901.0, 902.0, 900.0, 901.0, 902.0];
+    let granule = opened(|writer| by_detector(writer, &same));
+    assert_eq!(granule.bands()[0].axis.wavenumbers(), [900.0, 901.0, 902.0]);
+    assert_eq!(granule.footprints().names(), ["line", "detector"]);
+    assert!(has_problem(&granule, "the same along detector"));
+    let shifted = [900.0, 901.0, 902.0, 900.5, 901.5, 902.5];
+    let file = file(|writer| by_detector(writer, &shifted));
+    let error = open(&file.path).unwrap_err().to_string();
+    assert!(error.contains("`wavenumber` differs by up to 0.5 along detector"), "{error}");
+}
+
+#[test]
+fn an_axis_by_first_value_and_step_is_found_and_told_as_a_guess() {
+    let write = |writer: &mut NetcdfWriter, attributes: bool| {
+        writer.dimension("line", 2).unwrap();
+        writer.dimension("spectral_sample", 4).unwrap();
+        let mut band = radiance("radiance", &["line", "spectral_sample"], UNIT);
+        if attributes {
+            band = band.attribute("wavenumber_start", 64_500.0).attribute("wavenumber_step", 25.0);
+        } else {
+            let number = |name: &str| {
+                VariableDraft::new(name, ValueKind::F64, &[]).attribute("units", "cm-1")
+            };
+            put(writer, number("first_wavenumber"), vec![645.0]);
+            put(writer, number("delta_wavenumber"), vec![0.25]);
+        }
+        put(writer, band, vec![1.0_f32; 8]);
+    };
+    for attributes in [true, false] {
+        let granule = opened(|writer| write(writer, attributes));
+        let band = &granule.bands()[0];
+        assert_eq!(band.axis.wavenumbers(), [645.0, 645.25, 645.5, 645.75], "{attributes}");
+        assert!(band.axis_variable.is_empty() && band.axis_steps.is_some());
+        assert!(has_problem(&granule, "guess: its spectral axis is taken along"));
+    }
 }
 
 /// The plain granule with one more variable.

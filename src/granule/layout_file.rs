@@ -47,7 +47,11 @@ pub struct BandEntry {
     pub unit: Option<String>,
     /// The variable of its spectral axis.
     pub axis: Option<String>,
-    /// The unit of that variable.
+    /// In place of a variable: where the first channel lies,
+    pub axis_first: Option<f64>,
+    /// and how far each is from the one before.
+    pub axis_step: Option<f64>,
+    /// The unit of that variable, or of these numbers.
     pub axis_unit: Option<String>,
     /// The dimension that counts channels, where the axis does not tell.
     pub axis_dimension: Option<String>,
@@ -73,11 +77,13 @@ pub enum ApodiseBy {
 
 const KEYS: [&str; 5] = ["footprint_dimensions", "quality", "apodise", "bands", "geolocation"];
 
-const BAND_KEYS: [&str; 11] = [
+const BAND_KEYS: [&str; 13] = [
     "variable",
     "name",
     "unit",
     "axis",
+    "axis_first",
+    "axis_step",
     "axis_unit",
     "axis_dimension",
     "apodisation",
@@ -170,6 +176,8 @@ mod tests {
             name = "longwave"
             unit = "mW m-2 sr-1 (cm-1)-1"
             axis = "place"
+            axis_first = 650.0
+            axis_step = 0.25
             axis_unit = "cm-1"
             axis_dimension = "channel"
             apodisation = "none"

@@ -81,6 +81,23 @@ fn what_was_found_opens_as_the_same_granule() {
 }
 
 #[test]
+fn an_axis_may_be_said_by_first_value_and_step() {
+    let file = file(plain);
+    let band = |lines: &str| format!("[[bands]]\nvariable = \"radiance\"\n{lines}");
+    let steps = "axis_first = 7.0\naxis_step = 0.5\n";
+    let whole = format!("{steps}axis_unit = \"um\"\naxis_dimension = \"nu\"\n");
+    let granule = open(&file, &band(&whole)).unwrap();
+    // 1e4 / 7.5 um, in the file's order.
+    let middle = granule.bands()[0].axis.wavenumbers()[1];
+    assert!((middle - 1e4 / 7.5).abs() < 1e-9, "{middle}");
+    same_again(&file, &band(&whole));
+    assert!(refused(&file, &band(steps)).contains("say axis_unit, too"));
+    assert!(refused(&file, &band("axis_step = 0.5\n")).contains("say both"));
+    let both = format!("axis = \"nu\"\n{whole}");
+    assert!(refused(&file, &band(&both)).contains("not both"));
+}
+
+#[test]
 fn noise_is_the_variable_said() {
     let file = file(|writer| {
         plain(writer);
@@ -146,7 +163,7 @@ fn what_is_not_there_is_named_with_what_may_have_been_meant() {
     assert!(message.contains("does not fit the layout file"), "{message}");
     assert!(message.contains("no variable `radiances`; did you mean radiance?"), "{message}");
     assert!(band("axis = \"mu\"").contains("did you mean nu?"));
-    assert!(band("axis = \"radiance\"").contains("has not one dimension"));
+    assert!(band("axis = \"radiance\"").contains("has several dimensions"));
     assert!(band("axis = \"nu\"\naxis_unit = \"kg\"").contains("cm-1"));
     assert!(band("axis = \"nu\"\naxis_dimension = \"line\"").contains("3 values"));
     assert!(band("unit = \"furlong\"").contains("mW m-2 sr-1"));

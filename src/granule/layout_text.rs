@@ -50,7 +50,13 @@ fn write_band(text: &mut String, granule: &Granule, band: &Band, bad: &[bool]) {
     line(text, "name", &quoted(&band.name));
     line(text, "unit", &quoted(&band.unit_text));
     write_guesses(text, granule, &band.axis_variable);
-    line(text, "axis", &quoted(&band.axis_variable));
+    match band.axis_steps {
+        None => line(text, "axis", &quoted(&band.axis_variable)),
+        Some(steps) => {
+            line(text, "axis_first", &toml::Value::Float(steps.first).to_string());
+            line(text, "axis_step", &toml::Value::Float(steps.step).to_string());
+        }
+    }
     line(text, "axis_unit", &quoted(band.axis_unit.label()));
     line(text, "axis_dimension", &quoted(&band.dimension));
     let in_file = match &band.apodisation {

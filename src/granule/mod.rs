@@ -7,6 +7,8 @@
 mod angles;
 mod apodisation;
 mod apodise;
+mod axis_rows;
+mod axis_steps;
 mod band;
 mod channel_quality;
 mod channels;
@@ -43,7 +45,7 @@ mod spectral_axis;
 mod time;
 mod truth;
 
-pub use band::{Apodisation, Band, Channel, Quantity};
+pub use band::{Apodisation, AxisSteps, Band, Channel, Quantity};
 pub use channels::{NoChannel, channel_near, channels_between};
 pub use cube::{Cube, Presence};
 pub use decoder::Decoder;

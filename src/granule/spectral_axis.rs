@@ -1,5 +1,9 @@
 //! Which dimension of a variable is spectral, and which variable says where its channels lie.
 
+use super::axis_rows::{Rows, rows};
+use super::axis_steps;
+use super::band::AxisSteps;
+use super::decoder::Decoder;
 use super::error::Setback;
 use super::layout_file::BandEntry;
 use super::named_variable::{named_dimension, named_variable};
@@ -13,14 +17,30 @@ use crate::units::SpectralUnit;
 pub struct AxisCandidate {
     /// The dimension, as a place in the file's list.
     pub dimension: usize,
-    /// The variable, as a place in the file's list.
-    pub variable: usize,
+    /// Where its values are from.
+    pub from: AxisFrom,
     /// The unit of its values; none where the file gives none that can be read.
     pub unit: Option<SpectralUnit>,
     /// How sure it is: the smaller the better.
     pub rank: u8,
     /// Whether its own dimension is another one of the same name and length, in another group.
     pub look_alike: bool,
+}
+
+/// Where the values of an axis are from.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum AxisFrom {
+    /// A variable, as a place in the file's list.
+    Variable(usize),
+    /// A first value and a step.
+    Steps(AxisSteps),
+    /// The same in two variables with one value each, as places in the file's list.
+    Numbers {
+        /// Where the first channel lies.
+        first: usize,
+        /// How far each is from the one before.
+        step: usize,
+    },
 }
 
 const STANDARD_NAMES: [&str; 6] = [
@@ -39,7 +59,7 @@ const NAME_PARTS: [&str; 8] =
 /// Axes of thermal sounders lie well inside of this, cm-1; a length in metres of anything else does not.
 const PLAUSIBLE: std::ops::RangeInclusive<f64> = 100.0..=10_000.0;
 
-/// A variable of numbers along one dimension: all that an axis can be.
+/// A variable of numbers along one dimension: what an axis mostly is.
 struct OneDimensional {
     variable: usize,
     dimension: usize,
@@ -48,7 +68,11 @@ struct OneDimensional {
 
 /// Everything in a file that can be an axis. Made once, because reading the units anew for each
 /// variable would take as long as a file with thousands of variables likes.
-pub struct PossibleAxes(Vec<OneDimensional>);
+pub struct PossibleAxes {
+    plain: Vec<OneDimensional>,
+    /// Over several dimensions, as for each detector: the variables, and their units.
+    repeated: Vec<(usize, SpectralUnit)>,
+}
 
 impl PossibleAxes {
     /// Looks through all variables.
@@ -58,7 +82,20 @@ impl PossibleAxes {
             let unit = || axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok());
             axis.kind.is_number().then(|| OneDimensional { variable, dimension, unit: unit() })
         };
-        Self(index.variables.iter().enumerate().filter_map(possible).collect())
+        let repeated = |(place, axis): (usize, &Variable)| {
+            let several = (2..=3).contains(&axis.dimensions.len()) && axis.kind.is_number();
+            let standard_name = axis.text("standard_name").unwrap_or_default();
+            let named = STANDARD_NAMES.contains(&standard_name.as_str());
+            // A unit alone says too little: there are drop sizes in um as well.
+            let says_so = named || (standard_name.is_empty() && sounds_spectral(&axis.name));
+            let unit = SpectralUnit::parse(&axis.text("units")?).ok()?;
+            (several && says_so).then_some((place, unit))
+        };
+        let all = || index.variables.iter().enumerate();
+        Self {
+            plain: all().filter_map(possible).collect(),
+            repeated: all().filter_map(repeated).collect(),
+        }
     }
 }
 
@@ -70,12 +107,19 @@ pub fn candidates(
 ) -> Vec<AxisCandidate> {
     let named = variable.text("coordinates").unwrap_or_default();
     let mut found: Vec<AxisCandidate> = Vec::new();
-    for &OneDimensional { variable: place, dimension, unit } in &possible.0 {
+    for &OneDimensional { variable: place, dimension, unit } in &possible.plain {
         let Some((own, look_alike)) = alike(index, variable, dimension) else { continue };
         let axis = &index.variables[place];
         if let Some(rank) = rank(index, axis, dimension, unit, &named) {
-            found.push(AxisCandidate { dimension: own, variable: place, unit, rank, look_alike });
+            let from = AxisFrom::Variable(place);
+            found.push(AxisCandidate { dimension: own, from, unit, rank, look_alike });
         }
+    }
+    if found.is_empty() {
+        found = repeated(index, possible, variable);
+    }
+    if found.is_empty() {
+        found.extend(axis_steps::find(index, variable));
     }
     // The last dimension first where two are as sure; stable, so then by the file's order.
     let depth = |dimension| variable.dimensions.iter().rposition(|&own| own == dimension);
@@ -84,6 +128,22 @@ pub fn candidates(
         (candidate.look_alike, candidate.rank, deepest)
     });
     found
+}
+
+/// Axes over several of the variable's dimensions, each of which may be the spectral one.
+fn repeated(index: &FileIndex, possible: &PossibleAxes, variable: &Variable) -> Vec<AxisCandidate> {
+    let fits = |(place, _): &&(usize, SpectralUnit)| {
+        let axis = &index.variables[*place];
+        axis.path != variable.path
+            && axis.dimensions.iter().all(|one| variable.dimensions.contains(one))
+    };
+    let each = |(place, unit): &(usize, SpectralUnit)| {
+        let (from, unit) = (AxisFrom::Variable(*place), Some(*unit));
+        let candidate =
+            move |&dimension| AxisCandidate { dimension, from, unit, rank: 2, look_alike: false };
+        index.variables[*place].dimensions.iter().map(candidate).collect::<Vec<_>>()
+    };
+    possible.repeated.iter().filter(fits).flat_map(each).collect()
 }
 
 /// The dimension of a variable that `dimension` is, or that it is like by name and length.
@@ -112,6 +172,12 @@ pub fn said(
         Some(unit) => Some(unit.map_err(|error| format!("axis_unit: {error}"))?),
         None => None,
     };
+    if let (Some(first), Some(step)) = (entry.axis_first, entry.axis_step) {
+        return said_steps(index, variable, entry, AxisSteps { first, step }, unit).map(Some);
+    }
+    if entry.axis_first.is_some() || entry.axis_step.is_some() {
+        return Err("axis_first and axis_step: say both".into());
+    }
     let Some(name) = &entry.axis else {
         return match unit {
             Some(_) => Err("axis_unit without `axis`: say the variable, too".into()),
@@ -121,7 +187,7 @@ pub fn said(
     let place = named_variable(index, name).map_err(|error| format!("axis: {error}"))?;
     let axis = &index.variables[place];
     let &[own] = axis.dimensions.as_slice() else {
-        return Err(format!("axis: `{}` has not one dimension", axis.path));
+        return said_repeated(index, variable, entry, place, unit).map(Some);
     };
     let dimension = match &entry.axis_dimension {
         Some(name) => named_dimension(index, &variable.dimensions, name)
@@ -144,7 +210,52 @@ pub fn said(
         ));
     }
     let unit = unit.or_else(|| axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok()));
-    Ok(Some(AxisCandidate { dimension, variable: place, unit, rank: 0, look_alike: false }))
+    let from = AxisFrom::Variable(place);
+    Ok(Some(AxisCandidate { dimension, from, unit, rank: 0, look_alike: false }))
+}
+
+/// An axis over several dimensions, of which the layout file says which one is spectral.
+fn said_repeated(
+    index: &FileIndex,
+    variable: &Variable,
+    entry: &BandEntry,
+    place: usize,
+    unit: Option<SpectralUnit>,
+) -> Result<AxisCandidate, String> {
+    let axis = &index.variables[place];
+    if axis.dimensions.is_empty() {
+        return Err(format!("axis: `{}` has no dimension", axis.path));
+    }
+    let Some(name) = &entry.axis_dimension else {
+        return Err(format!("axis: `{}` has several dimensions; say axis_dimension", axis.path));
+    };
+    let shared: Vec<usize> =
+        axis.dimensions.iter().copied().filter(|one| variable.dimensions.contains(one)).collect();
+    let dimension = named_dimension(index, &shared, name)
+        .map_err(|error| format!("axis_dimension: {error}"))?;
+    let unit = unit.or_else(|| axis.text("units").and_then(|unit| SpectralUnit::parse(&unit).ok()));
+    let from = AxisFrom::Variable(place);
+    Ok(AxisCandidate { dimension, from, unit, rank: 0, look_alike: false })
+}
+
+fn said_steps(
+    index: &FileIndex,
+    variable: &Variable,
+    entry: &BandEntry,
+    steps: AxisSteps,
+    unit: Option<SpectralUnit>,
+) -> Result<AxisCandidate, String> {
+    if entry.axis.is_some() {
+        return Err("axis or axis_first and axis_step, not both".into());
+    }
+    let unit = Some(unit.ok_or("axis_first and axis_step: say axis_unit, too")?);
+    let dimension = match &entry.axis_dimension {
+        Some(name) => named_dimension(index, &variable.dimensions, name)
+            .map_err(|error| format!("axis_dimension: {error}"))?,
+        None => return Err("axis_first and axis_step: say axis_dimension, too".into()),
+    };
+    let from = AxisFrom::Steps(steps);
+    Ok(AxisCandidate { dimension, from, unit, rank: 0, look_alike: false })
 }
 
 /// The dimension of a variable that an axis over `own` belongs to: the same, its like, or the only
@@ -173,8 +284,7 @@ fn rank(
     if !standard_name.is_empty() && unit.is_none() {
         return None;
     }
-    let lower = axis.name.to_lowercase();
-    let sounds_spectral = NAME_PARTS.iter().any(|part| lower.contains(part));
+    let sounds_spectral = sounds_spectral(&axis.name);
     let is_coordinate = axis.name == index.dimensions[dimension].name;
     let is_named = named.split_whitespace().any(|name| name == axis.name);
     match unit {
@@ -187,7 +297,62 @@ fn rank(
             3
         }),
         Some(_) => None,
-        None => (sounds_spectral && lower.contains("wave")).then_some(4),
+        None => (sounds_spectral && axis.name.to_lowercase().contains("wave")).then_some(4),
+    }
+}
+
+/// Whether a name has a part that names of spectral axes have.
+pub fn sounds_spectral(name: &str) -> bool {
+    let lower = name.to_lowercase();
+    NAME_PARTS.iter().any(|part| lower.contains(part))
+}
+
+/// The values of an axis as they are in the file, and what they are called in messages. None where
+/// they run along another dimension than the candidate's.
+fn stored(
+    reader: &FileReader,
+    candidate: &AxisCandidate,
+    problems: &mut Vec<Problem>,
+) -> Result<Option<(Vec<f64>, String)>, Setback> {
+    let index = reader.index();
+    let place = match candidate.from {
+        AxisFrom::Steps(steps) => {
+            let channels = index.dimensions[candidate.dimension].length;
+            let name = format!("from {} in steps of {}", steps.first, steps.step);
+            return Ok(Some((axis_steps::values(steps, channels), name)));
+        }
+        AxisFrom::Variable(place) => place,
+        // Resolved to steps before.
+        AxisFrom::Numbers { .. } => return Ok(None),
+    };
+    let variable = &index.variables[place];
+    let values = Decoder::of(variable).decode_all(&reader.read_all(variable)?);
+    let name = format!("`{}`", variable.path);
+    if variable.dimensions.len() == 1 {
+        return Ok(Some((values, name)));
+    }
+    let along = variable.dimensions.iter().position(|one| *one == candidate.dimension);
+    let Some(along) = along else { return Ok(None) };
+    let others: Vec<&str> = index
+        .dimension_names(variable)
+        .into_iter()
+        .enumerate()
+        .filter(|(place, _)| *place != along)
+        .map(|(_, name)| name)
+        .collect();
+    let others = others.join(", ");
+    match rows(&values, &index.lengths(variable), along) {
+        Rows::Across => Ok(None),
+        Rows::Differ(most) => Err(Setback::Variable(format!(
+            "its spectral axis {name} differs by up to {most} along {others}; all footprints must \
+             share one axis: bring the spectra to one grid first"
+        ))),
+        Rows::Same(row) => {
+            let what =
+                format!("the spectral axis is the same along {others}; one row of it is used");
+            problems.push(Problem::note(&what, &variable.path, ""));
+            Ok(Some((row, name)))
+        }
     }
 }
 
@@ -200,9 +365,7 @@ pub fn read(
     candidate: &AxisCandidate,
     problems: &mut Vec<Problem>,
 ) -> Result<Option<(ChannelAxis, SpectralUnit)>, Setback> {
-    let variable = &reader.index().variables[candidate.variable];
-    let samples = reader.read_all(variable)?;
-    let stored = super::decoder::Decoder::of(variable).decode_all(&samples);
+    let Some((stored, name)) = stored(reader, candidate, problems)? else { return Ok(None) };
     let unit = match candidate.unit {
         Some(unit) => unit,
         None => match guessed_unit(&stored) {
@@ -212,7 +375,7 @@ pub fn read(
                         "the spectral axis has no unit that can be read; taken as {}",
                         unit.label()
                     ),
-                    &variable.path,
+                    name.trim_matches('`'),
                     "give it as `units`, for example cm-1 or um",
                 ));
                 unit
@@ -227,9 +390,7 @@ pub fn read(
     }
     match ChannelAxis::new(wavenumbers) {
         Ok(axis) => Ok(Some((axis, unit))),
-        Err(error) => {
-            Err(Setback::Variable(format!("its spectral axis `{}`: {error}", variable.path)))
-        }
+        Err(error) => Err(Setback::Variable(format!("its spectral axis {name}: {error}"))),
     }
 }
 

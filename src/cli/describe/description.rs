@@ -90,6 +90,8 @@ pub struct BandDescription {
     /// Stretches without a gap.
     pub segments: usize,
     pub axis_variable: String,
+    /// First value and step of an axis that no variable gives.
+    pub axis_steps: Option<[f64; 2]>,
     pub axis_units: &'static str,
     pub apodisation: String,
     pub noise: Option<NoiseDescription>,
@@ -251,6 +253,7 @@ impl BandDescription {
             largest_spacing: spacing.map(|(_, high)| high),
             segments: band.axis.segments().len(),
             axis_variable: clean_text(&band.axis_variable),
+            axis_steps: band.axis_steps.map(|steps| [steps.first, steps.step]),
             axis_units: band.axis_unit.label(),
             apodisation: band.apodisation.label().to_owned(),
             noise: band.noise.as_ref().map(|noise| NoiseDescription {

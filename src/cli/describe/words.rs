@@ -96,7 +96,12 @@ fn print_band(band: &BandDescription, out: &mut impl Write) -> io::Result<()> {
         false => format!("used as {}", band.units_in_use),
     };
     writeln!(out, "    unit in the file {:?}, {used}", band.units_in_file)?;
-    writeln!(out, "    spectral axis `{}` in {}", band.axis_variable, band.axis_units)?;
+    match band.axis_steps {
+        None => writeln!(out, "    spectral axis `{}` in {}", band.axis_variable, band.axis_units)?,
+        Some([first, step]) => {
+            writeln!(out, "    spectral axis from {first} in steps of {step} {}", band.axis_units)?;
+        }
+    }
     writeln!(out, "    apodisation {}", band.apodisation)?;
     if let Some(noise) = &band.noise {
         let along = match noise.along.is_empty() {
