@@ -6,7 +6,7 @@ use crate::sample;
 use crate::terminal::Session;
 
 fn start(folder: &Path, columns: u16, rows: u16, more: &[&str]) -> Session {
-    let file = sample("sea_of_lowen");
+    let file = sample("ketter_desert");
     let mut arguments = vec!["review", file.to_str().unwrap(), "--campaign", "campaign"];
     arguments.extend(more);
     let session = Session::start_with(folder, columns, rows, &arguments, &[]);
