@@ -79,6 +79,8 @@ pub struct Bench {
     pub look: TraceLook,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
+    /// The Field goes by latitude and longitude instead of the instrument's order.
+    pub geographic: bool,
     /// What the signs over the Field tell.
     pub signs: Signs,
     /// Whether cursor, box and pins are marked on the Field.
@@ -105,9 +107,7 @@ impl Bench {
     /// A granule just put on the table, with `first_layer` or the first suggested one asked for.
     pub fn new(entry: usize, review: Arc<Review>, first_layer: Option<String>) -> Bench {
         let granule = review.granule();
-        let place = granule.geolocation();
-        let coordinates = place.latitude.as_deref().zip(place.longitude.as_deref());
-        let placement = Placement::unfold(granule.footprints().lengths(), coordinates);
+        let placement = in_order(&review);
         let channels = Channels::of(granule.bands().iter().map(|band| &band.axis));
         let (low, high) = channels.range().unwrap_or((0.0, 1.0));
         let suggested = review.suggested_layers();
@@ -143,6 +143,7 @@ impl Bench {
             window: SpectrumWindow::whole(low, high),
             look: TraceLook::default(),
             field_zoom: 0,
+            geographic: false,
             signs: Signs::default(),
             marks: true,
             strip_along: 0,
@@ -167,6 +168,22 @@ impl Bench {
                 self.suggested.push(layer);
             }
         }
+    }
+
+    /// Lays the Field out by latitude and longitude, or in the instrument's order; false where the
+    /// positions are not known.
+    pub fn place_geographically(&mut self, geographic: bool) -> bool {
+        let placement = match geographic {
+            true => {
+                let place = self.review.granule().geolocation();
+                let known = place.latitude.as_deref().zip(place.longitude.as_deref());
+                known.and_then(|(latitude, longitude)| Placement::geographic(latitude, longitude))
+            }
+            false => Some(in_order(&self.review)),
+        };
+        let Some(placement) = placement else { return false };
+        (self.placement, self.geographic) = (placement, geographic);
+        true
     }
 
     /// Compares what the tests say with what stands in the ledgers.
@@ -286,6 +303,7 @@ impl Bench {
             window: (!self.window.is_whole()).then(|| self.window.shown()),
             quantity: self.look.quantity.name().to_owned(),
             field_zoom: self.field_zoom,
+            geographic: self.geographic,
             strip_along: self.strip_along,
             panes: panes.names(),
             zoomed: panes.is_zoomed(),
@@ -303,6 +321,7 @@ impl Bench {
             self.window.show(low, high);
         }
         self.look.quantity = TraceQuantity::named(&place.quantity).unwrap_or_default();
+        self.place_geographically(place.geographic);
         self.field_zoom = place.field_zoom.min(super::looking::MOST_FIELD_ZOOM);
         let dimensions = self.review.granule().footprints().lengths().len();
         self.strip_along = place.strip_along.min(dimensions.saturating_sub(1));
@@ -326,4 +345,11 @@ impl Bench {
         self.pins.push(Pinned { footprint, letter, spectrum });
         true
     }
+}
+
+/// Footprints in the instrument's order.
+fn in_order(review: &Review) -> Placement {
+    let place = review.granule().geolocation();
+    let coordinates = place.latitude.as_deref().zip(place.longitude.as_deref());
+    Placement::unfold(review.granule().footprints().lengths(), coordinates)
 }

@@ -107,6 +107,19 @@ pub fn other_layer(app: &mut App) -> Vec<Job> {
     refresh_layer(app)
 }
 
+/// Lays the Field out by latitude and longitude, or in the instrument's order again.
+pub fn geographic(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let wanted = !bench.geographic;
+    let words = match (bench.place_geographically(wanted), wanted) {
+        (false, _) => "the file gives no latitudes and longitudes to go by",
+        (true, true) => "by latitude and longitude, north is up",
+        (true, false) => "in the order of the instrument",
+    };
+    app.say(words);
+    Vec::new()
+}
+
 /// Changes what the signs over the Field tell, or whether marks are there.
 pub fn signs(app: &mut App, action: Action) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };

@@ -20,6 +20,8 @@ pub struct Place {
     pub quantity: String,
     /// Steps that the Field is zoomed in.
     pub field_zoom: u8,
+    /// The Field goes by latitude and longitude.
+    pub geographic: bool,
     /// The dimension that the Strip lies along, by its number.
     pub strip_along: usize,
     /// The panes that had the keys, the latest first, by their names.

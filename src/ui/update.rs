@@ -75,6 +75,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::NextLayer | A::PreviousLayer | A::ChannelLayer | A::CycleRange => {
             looking::layer(app, action)
         }
+        A::Geographic => looking::geographic(app),
         A::OtherLayer => looking::other_layer(app),
         A::Signs | A::Marks => looking::signs(app, action),
         A::FieldIn | A::FieldOut => looking::field(app, action),

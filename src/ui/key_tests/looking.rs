@@ -198,3 +198,17 @@ fn an_envelope_is_that_of_the_selection() {
     let screen = trial.screen(120, 40);
     assert!(screen.contains("300 K") && screen.contains("radiance"), "{screen}");
 }
+
+#[test]
+fn the_field_goes_by_latitude_and_longitude_too() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("M");
+    assert_eq!(trial.message(), "by latitude and longitude, north is up");
+    assert!(trial.bench().geographic);
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains('N') && screen.contains('E'), "{screen}");
+    trial.keys("M");
+    assert_eq!(trial.message(), "in the order of the instrument");
+    trial.keys("Right");
+    assert_eq!(trial.bench().cursor, 1);
+}

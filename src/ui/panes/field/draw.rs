@@ -4,6 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use unicode_width::UnicodeWidthStr;
 
+use super::graticule;
 use super::legend;
 use super::marks;
 use super::pixels::draw_map;
@@ -24,6 +25,7 @@ pub fn draw(view: &FieldView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer
     match Geometry::new(map, dots(theme), view.placement, view.cursor, view.zoom) {
         Some(geometry) => {
             draw_map(view, &geometry, theme, buffer);
+            graticule::draw(view, &geometry, theme, buffer);
             marks::draw(view, &geometry, theme, area, buffer);
         }
         None => {

@@ -72,6 +72,23 @@ impl Geometry {
         ))
     }
 
+    /// The cell of the screen in which a place of the map lies, where fractions are parts of a place.
+    pub(super) fn cell_at(&self, column: f64, row: f64) -> Option<(u16, u16)> {
+        let along = |place: f64, origin: usize, extent: usize, size: usize| {
+            let share = (place - origin as f64) / extent as f64;
+            (0.0..1.0).contains(&share).then(|| (share * size as f64) as u16)
+        };
+        let x = along(column, self.origin.0, self.extent.0, self.size.0)?;
+        let y = along(row, self.origin.1, self.extent.1, self.size.1)?;
+        Some((self.area.x + x, self.area.y + y / self.dots))
+    }
+
+    /// Columns and rows of the map on show: first and behind the last.
+    pub(super) fn shown(&self) -> (Range<usize>, Range<usize>) {
+        let range = |origin: usize, extent: usize| origin..origin + extent;
+        (range(self.origin.0, self.extent.0), range(self.origin.1, self.extent.1))
+    }
+
     /// The dots of a cell, from above.
     pub(super) fn dots_of(&self, cell: (u16, u16)) -> impl Iterator<Item = (usize, usize)> {
         let column = usize::from(cell.0 - self.area.x);

@@ -2,6 +2,8 @@
 
 mod clusters;
 mod draw;
+mod geographic;
+mod graticule;
 mod geometry;
 mod legend;
 mod marks;
@@ -11,5 +13,5 @@ mod view;
 
 pub use draw::{draw, geometry};
 pub use geometry::Geometry;
-pub use placement::Placement;
+pub use placement::{Graticule, Placement};
 pub use view::{FieldView, FlagSign, Pin};

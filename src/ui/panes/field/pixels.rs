@@ -117,9 +117,10 @@ fn gather(view: &FieldView<'_>, geometry: &Geometry, cell: (u16, u16)) -> (u32, 
     for (columns, rows) in geometry.dots_of(cell).filter_map(|dot| geometry.places(dot)) {
         for row in rows {
             for column in columns.clone() {
-                let Some(footprint) = view.placement.footprint_at(column, row) else { continue };
-                flags |= view.flags.get(footprint).copied().unwrap_or(0);
-                selected |= view.selected.get(footprint).copied().unwrap_or(false);
+                for footprint in view.placement.all_at(column, row) {
+                    flags |= view.flags.get(footprint).copied().unwrap_or(0);
+                    selected |= view.selected.get(footprint).copied().unwrap_or(false);
+                }
             }
         }
     }

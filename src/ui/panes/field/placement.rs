@@ -3,15 +3,31 @@
 
 use super::clusters::Clusters;
 
-/// A map of footprints on a grid of places, some of which may be empty.
-#[derive(Clone, Debug, Default, PartialEq, Eq)]
+/// How a map by latitude and longitude lies on the globe.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Graticule {
+    /// The longitude of the western edge, degrees east.
+    pub west: f64,
+    /// The latitude of the northern edge, degrees north.
+    pub north: f64,
+    /// Degrees of longitude and of latitude to a place.
+    pub step: (f64, f64),
+}
+
+/// A map of footprints on a grid of places, some of which may be empty. On a map by latitude and
+/// longitude a footprint may own several places, and several may lie at one, which the nearest owns.
+#[derive(Clone, Debug, Default, PartialEq)]
 pub struct Placement {
     columns: usize,
     rows: usize,
     /// The footprint at each place, row by row.
     owners: Vec<Option<u32>>,
-    /// The place of each footprint.
-    places: Vec<u32>,
+    /// The place of each footprint; none where its position is not known.
+    places: Vec<Option<u32>>,
+    /// Footprints at places that others own, by place.
+    others: Vec<(u32, u32)>,
+    /// How it lies on the globe, where it goes by latitude and longitude.
+    graticule: Option<Graticule>,
 }
 
 impl Placement {
@@ -50,7 +66,41 @@ impl Placement {
                 *owner = Some(footprint as u32);
             }
         }
-        Self { columns, rows, owners, places }
+        let places = places.into_iter().map(Some).collect();
+        Self { columns, rows, owners, places, others: Vec::new(), graticule: None }
+    }
+
+    /// A map by latitude and longitude, with the owner of each place and the place of each footprint.
+    pub(super) fn on_map(
+        columns: usize,
+        owners: Vec<Option<u32>>,
+        places: Vec<Option<u32>>,
+        graticule: Graticule,
+    ) -> Self {
+        let rows = owners.len() / columns.max(1);
+        let mut others: Vec<(u32, u32)> = Vec::new();
+        for (footprint, place) in (0..).zip(&places) {
+            let Some(place) = *place else { continue };
+            if owners.get(place as usize) != Some(&Some(footprint)) {
+                others.push((place, footprint));
+            }
+        }
+        others.sort_unstable();
+        Self { columns, rows, owners, places, others, graticule: Some(graticule) }
+    }
+
+    /// How it lies on the globe, where it goes by latitude and longitude.
+    pub fn graticule(&self) -> Option<Graticule> {
+        self.graticule
+    }
+
+    /// Every footprint at a place: its owner, and those that lie there too.
+    pub fn all_at(&self, column: usize, row: usize) -> impl Iterator<Item = usize> {
+        let place = (row * self.columns + column) as u32;
+        let first = self.others.partition_point(|other| other.0 < place);
+        let here = self.others.iter().skip(first).take_while(move |other| other.0 == place);
+        let others = here.map(|other| other.1 as usize);
+        self.footprint_at(column, row).into_iter().chain(others)
     }
 
     /// Places across.
@@ -79,32 +129,50 @@ impl Placement {
 
     /// Column and row of a footprint.
     pub fn place_of(&self, footprint: usize) -> Option<(usize, usize)> {
-        let place = *self.places.get(footprint)? as usize;
+        let place = (*self.places.get(footprint)?)? as usize;
         Some((place % self.columns, place / self.columns))
     }
 
     /// The footprint that lies so many places to the right and down, at most up to the edge; empty
     /// places are stepped over, and where nothing more lies that way the footprint itself.
     pub fn moved(&self, footprint: usize, right: isize, down: isize) -> usize {
-        let Some((column, row)) = self.place_of(footprint) else { return footprint };
+        let Some((column, row)) = self.place_of(footprint) else {
+            return self.beside_in_file(footprint, right + down);
+        };
         let clamp = |from: usize, step: isize, length: usize| {
             from.saturating_add_signed(step).min(length.saturating_sub(1))
         };
         let target = (clamp(column, right, self.columns), clamp(row, down, self.rows));
-        self.first_towards(target, (right.signum(), down.signum()))
-            .or_else(|| self.first_towards(target, (-right.signum(), -down.signum())))
+        let forth = (right.signum(), down.signum());
+        self.first_towards(target, forth, Some(footprint))
+            .or_else(|| self.first_towards(target, (-forth.0, -forth.1), None))
             .unwrap_or(footprint)
     }
 
-    /// The first footprint from a place on in a direction.
-    fn first_towards(&self, from: (usize, usize), step: (isize, isize)) -> Option<usize> {
+    /// The footprint before or after one in the file.
+    fn beside_in_file(&self, footprint: usize, step: isize) -> usize {
+        let last = self.places.len().saturating_sub(1);
+        match footprint {
+            outside if outside > last => outside,
+            inside => inside.saturating_add_signed(step.signum()).min(last),
+        }
+    }
+
+    /// The first footprint but this one from a place on in a direction.
+    fn first_towards(
+        &self,
+        from: (usize, usize),
+        step: (isize, isize),
+        but: Option<usize>,
+    ) -> Option<usize> {
         let (mut column, mut row) = from;
         loop {
             if column >= self.columns || row >= self.rows {
                 return None;
             }
-            if let Some(footprint) = self.footprint_at(column, row) {
-                return Some(footprint);
+            let here = self.footprint_at(column, row);
+            if here.is_some() && here != but {
+                return here;
             }
             if step == (0, 0) {
                 return None;
@@ -120,6 +188,14 @@ impl Placement {
             return Vec::new();
         };
         let columns = a.0.min(b.0)..=a.0.max(b.0);
+        if self.graticule.is_some() {
+            let rows = a.1.min(b.1)..=a.1.max(b.1);
+            let is_in =
+                |place: (usize, usize)| columns.contains(&place.0) && rows.contains(&place.1);
+            return (0..self.places.len())
+                .filter(|footprint| self.place_of(*footprint).is_some_and(is_in))
+                .collect();
+        }
         (a.1.min(b.1)..=a.1.max(b.1))
             .flat_map(|row| columns.clone().map(move |column| (column, row)))
             .filter_map(|(column, row)| self.footprint_at(column, row))
