@@ -70,12 +70,16 @@ fn of_band(examined: &Examined, band: &BandHealth) -> Value {
             "bias_deviation_K": present(one.bias_deviation),
         })
     });
+    let shifts = band.shifts.iter().map(
+        |one| json!({ "detector": one.detector, "ppm": one.ppm, "deviation_ppm": one.deviation }),
+    );
     json!({
         "band": examined.band_name(band.band),
         "basis": basis,
         "noise_over_expected": present(median(&mut ratios)),
         "noise_in_file": band.has_nedn,
         "detectors": detectors.collect::<Vec<_>>(),
+        "shifts": shifts.collect::<Vec<_>>(),
         "sweep_difference_K": band.sweep.map(|(difference, _)| difference),
     })
 }

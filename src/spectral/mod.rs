@@ -20,6 +20,7 @@ mod planck_forms;
 mod reference_tables;
 mod robust;
 mod segments;
+mod shift;
 
 pub use absorption_bands::{ABSORPTION_BANDS, AbsorptionBand};
 pub use apodisation::{HAMMING_CENTRE, HAMMING_NOISE_FACTOR, HAMMING_SIDE, Hamming3, hamming3};
@@ -38,3 +39,4 @@ pub use planck_forms::{
     planck_frequency, planck_wavelength, temperature_frequency, temperature_wavelength,
 };
 pub use robust::{centre_and_deviation, deviation_from_zero, median, running_median};
+pub use shift::{SpectralShift, spectral_shift};

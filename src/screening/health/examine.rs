@@ -10,6 +10,7 @@ use super::limits::HealthLimits;
 use super::readings::{BandReadings, Spectra};
 use super::repeats::repeated_spectra;
 use super::sample::Sample;
+use super::shift::{DetectorShift, detector_shifts, shifted_detectors};
 use super::spectra::{SpectraCheck, SpectrumReading};
 use crate::granule::{Apodisation, Granule, GranuleError};
 use crate::screening::unusual::{Basis, Fitted, fit};
@@ -56,6 +57,8 @@ pub struct BandHealth {
     pub detectors: Vec<DetectorNumbers>,
     /// What even positions are warmer than odd ones by, K, and its standard deviation.
     pub sweep: Option<(f64, f64)>,
+    /// Spectral shifts of the detectors, where the band has lines of CO2.
+    pub shifts: Vec<DetectorShift>,
 }
 
 /// Where components come from.
@@ -196,6 +199,11 @@ impl<'g> BandWork<'g> {
             findings.extend(noisy_channels(&readings, &noise, &fitted.set_aside, limits));
             findings.extend(popping_channels(&readings, &sample, fitted, grid, limits));
         }
+        let shifts = match &fitted {
+            Some(fitted) => detector_shifts(&readings, &sample, fitted, grid),
+            None => Vec::new(),
+        };
+        findings.extend(shifted_detectors(&readings, &shifts, limits));
         let (mut of_detectors, mut sweep_numbers) = (Vec::new(), None);
         if sample.rows.count() > 0 {
             let signal = window_signal(&readings, &sample, grid);
@@ -228,6 +236,7 @@ impl<'g> BandWork<'g> {
             has_nedn: nedn.is_some(),
             detectors: of_detectors,
             sweep: sweep_numbers,
+            shifts,
             basis: fitted.map(|fitted| fitted.basis),
         };
         let expected = sample.excused.iter().filter(|excused| !**excused).count();

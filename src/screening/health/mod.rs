@@ -12,6 +12,7 @@ mod readings;
 mod repeats;
 mod ringing;
 mod sample;
+mod shift;
 mod spectra;
 
 pub use channels::ChannelNoise;
@@ -20,3 +21,4 @@ pub use examine::{BandHealth, BasisOrigin, Examined, UnusualSpectrum, examine};
 pub use finding::{Check, Finding, Subject};
 pub use grid::ScanGrid;
 pub use limits::{HealthLimits, LIMITS, LimitKind};
+pub use shift::DetectorShift;
