@@ -29,6 +29,9 @@ pub struct Arguments {
     /// Draw another climate from a seed: air, gases, ground, clouds, view, hour, noise, defects.
     #[arg(long, value_name = "NUMBER")]
     perturbed: Option<u64>,
+    /// Plant a defect of every kind, labelled in the truth, in place of those of the scene.
+    #[arg(long)]
+    faulty: bool,
     /// Replace files that are there already.
     #[arg(long)]
     force: bool,
@@ -76,7 +79,13 @@ fn plan(arguments: &Arguments) -> anyhow::Result<Vec<(Recipe, PathBuf)>> {
     let scenes = scenes(&arguments.scene)?;
     let planned: Vec<(Recipe, PathBuf)> = scenes
         .into_iter()
-        .map(|scene| Recipe { scene, shape, seed: arguments.seed, perturbed: arguments.perturbed })
+        .map(|scene| Recipe {
+            scene,
+            shape,
+            seed: arguments.seed,
+            perturbed: arguments.perturbed,
+            faulty: arguments.faulty,
+        })
         .map(|recipe| (recipe, arguments.out.join(recipe.file_name())))
         .collect();
     if !arguments.force

@@ -18,6 +18,7 @@ mod planck;
 mod planck_forms;
 #[cfg(test)]
 mod reference_tables;
+mod ringing;
 mod robust;
 mod segments;
 mod shift;
@@ -38,5 +39,6 @@ pub use planck::{
 pub use planck_forms::{
     planck_frequency, planck_wavelength, temperature_frequency, temperature_wavelength,
 };
+pub use ringing::{Ringing, RingingWindows};
 pub use robust::{centre_and_deviation, deviation_from_zero, median, running_median};
 pub use shift::{SpectralShift, spectral_shift};

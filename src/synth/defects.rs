@@ -26,6 +26,35 @@ pub enum Defect {
         /// By how much at 250 K, K.
         kelvin: f64,
     },
+    /// A detector of a band is noisier than the others.
+    NoisyDetector {
+        /// Number of the band.
+        band: usize,
+        /// Number of the detector.
+        detector: usize,
+        /// Factor on its noise.
+        factor: f32,
+    },
+    /// The wavenumbers of a detector of a band are off.
+    Shift {
+        /// Number of the band.
+        band: usize,
+        /// Number of the detector.
+        detector: usize,
+        /// By how much, parts per million.
+        ppm: f64,
+    },
+    /// Neighbouring channels of a band go up and down in turns in a block of lines and positions.
+    Ringing {
+        /// Number of the band.
+        band: usize,
+        /// First scan line and position.
+        first: (usize, usize),
+        /// Last scan line and position.
+        last: (usize, usize),
+        /// Height in units of the noise.
+        noises: f32,
+    },
     /// A channel jumps to another level for some scan lines.
     PoppingChannel {
         /// Nearest channel, cm-1.
@@ -83,7 +112,7 @@ pub enum Defect {
 }
 
 /// Footprint defects by bit, as the truth group names them.
-pub const FOOTPRINT_DEFECTS: [&str; 7] = [
+const FOOTPRINT_DEFECTS: [&str; 10] = [
     "dead_detector",
     "striping",
     "spike",
@@ -91,7 +120,12 @@ pub const FOOTPRINT_DEFECTS: [&str; 7] = [
     "repeated_scan_line",
     "band_lost",
     "fill_values",
+    "noisy_detector",
+    "spectral_shift",
+    "ringing",
 ];
+/// Defects that every file names, planted or not.
+const ALWAYS_NAMED: usize = 7;
 /// The bit of a dead detector.
 pub const DEAD_DETECTOR: i32 = 1 << 0;
 const STRIPING: i32 = 1 << 1;
@@ -101,6 +135,9 @@ const LOST_LINE: i32 = 1 << 3;
 pub const REPEATED_LINE: i32 = 1 << 4;
 const BAND_LOST: i32 = 1 << 5;
 const FILL_VALUES: i32 = 1 << 6;
+const NOISY_DETECTOR: i32 = 1 << 7;
+const SHIFT: i32 = 1 << 8;
+const RINGING: i32 = 1 << 9;
 
 /// Channel defects by bit.
 pub const CHANNEL_DEFECTS: [&str; 3] = ["dead", "noisy", "popping"];
@@ -152,6 +189,18 @@ impl Faults {
     /// Defect bits of each channel of a band.
     pub fn channel_bits(&self, band: usize) -> &[i32] {
         &self.channel_bits[band]
+    }
+
+    /// Names of the footprint defects by bit.
+    pub fn names(&self) -> &'static [&'static str] {
+        let later = |defect: &Defect| {
+            use Defect::{NoisyDetector, Ringing, Shift};
+            matches!(defect, NoisyDetector { .. } | Shift { .. } | Ringing { .. })
+        };
+        match self.defects.iter().any(later) {
+            true => &FOOTPRINT_DEFECTS,
+            false => &FOOTPRINT_DEFECTS[..ALWAYS_NAMED],
+        }
     }
 
     /// Whether a scan line repeats the one before it.
@@ -221,6 +270,28 @@ fn spoil_by(defect: &Defect, at: &Place, band: &Band, noise: &[f32], spectrum: &
             }
             STRIPING
         }
+        Defect::NoisyDetector { band: b, detector, factor }
+            if (b, detector) == (at.band, at.detector) =>
+        {
+            for (value, noise) in spectrum.iter_mut().zip(noise) {
+                *value += (factor - 1.0) * noise;
+            }
+            NOISY_DETECTOR
+        }
+        Defect::Shift { band: b, detector, ppm } if (b, detector) == (at.band, at.detector) => {
+            shift(band, ppm, spectrum);
+            SHIFT
+        }
+        Defect::Ringing { band: b, first, last, noises }
+            if b == at.band
+                && (first.0..=last.0).contains(&at.line)
+                && (first.1..=last.1).contains(&at.position) =>
+        {
+            for (channel, (value, nedn)) in spectrum.iter_mut().zip(&band.nedn).enumerate() {
+                *value += if channel % 2 == 0 { noises * nedn } else { -noises * nedn };
+            }
+            RINGING
+        }
         Defect::PoppingChannel { wavenumber, noises, first, last }
             if (first..=last).contains(&at.line) =>
         {
@@ -258,6 +329,27 @@ fn spoil_by(defect: &Defect, at: &Place, band: &Band, noise: &[f32], spectrum: &
     }
 }
 
+/// What a spectrum looks like to a detector whose wavenumbers are off by `ppm`: less the shift times
+/// the slope, which is that of the band-limited function through the channels
+/// (`sum (-1)^k / k (R[i+k] - R[i-k])` per channel), tapered. Ends of the band stay as they are.
+fn shift(band: &Band, ppm: f64, spectrum: &mut [f32]) {
+    const REACH: usize = 16;
+    let before = spectrum.to_vec();
+    for at in REACH..spectrum.len().saturating_sub(REACH) {
+        let spacing = 0.5 * (band.wavenumbers[at + 1] - band.wavenumbers[at - 1]);
+        let slope: f64 = (1..=REACH)
+            .map(|k| {
+                let taper =
+                    (0.5 * std::f64::consts::PI * k as f64 / (REACH + 1) as f64).cos().powi(2);
+                let sign = if k % 2 == 0 { -1.0 } else { 1.0 };
+                let step = f64::from(before[at + k]) - f64::from(before[at - k]);
+                sign * taper / k as f64 * step
+            })
+            .sum();
+        spectrum[at] -= (1e-6 * ppm * band.wavenumbers[at] * slope / spacing) as f32;
+    }
+}
+
 /// The band's channel nearest to a wavenumber, if it lies within 1 cm-1.
 fn nearest(band: &Band, wavenumber: f64) -> Option<usize> {
     let distance = |index: &usize| (band.wavenumbers[*index] - wavenumber).abs();
@@ -283,6 +375,39 @@ fn channel_bits(defects: &[Defect], instrument: &Instrument) -> Vec<Vec<i32>> {
         bits
     };
     instrument.bands.iter().map(of_band).collect()
+}
+
+/// One defect of every kind, as far as the instrument has bands and detectors for them.
+pub fn every_kind(instrument: &Instrument, swath: &Swath) -> Vec<Defect> {
+    let last_band = instrument.bands.len() - 1;
+    let middle_band = last_band.min(1);
+    let (lines, positions) = (swath.lines, swath.positions);
+    let mut defects = Vec::new();
+    if swath.detectors() >= 4 {
+        defects.push(Defect::Shift { band: 0, detector: 3, ppm: 25.0 });
+        defects.push(Defect::NoisyDetector { band: middle_band, detector: 0, factor: 3.0 });
+        defects.push(Defect::Striping { band: middle_band, detector: 2, kelvin: 0.7 });
+        defects.push(Defect::DeadDetector { band: last_band, detector: 1 });
+    }
+    let ringing = ((lines * 3 / 4, 2), (lines * 3 / 4 + 1, positions / 2));
+    let lost = ((lines / 2, positions / 2), (lines / 2 + 1, positions - 1));
+    defects.extend([
+        Defect::PoppingChannel {
+            wavenumber: 724.5,
+            noises: 14.0,
+            first: lines / 4,
+            last: lines / 2,
+        },
+        Defect::NoisyChannel { wavenumber: 699.0, factor: 6.0 },
+        Defect::DeadChannel { wavenumber: 1322.0 },
+        Defect::Ringing { band: 0, first: ringing.0, last: ringing.1, noises: 3.0 },
+        Defect::Spikes { count: 14, noises: 15.0 },
+        Defect::LostLine { line: lines - 2 },
+        Defect::RepeatedLine { line: 4.min(lines - 1) },
+        Defect::BandLost { band: 0, first: lost.0, last: lost.1 },
+        Defect::Fill { count: 9 },
+    ]);
+    defects
 }
 
 #[cfg(test)]
@@ -315,6 +440,21 @@ mod tests {
         let defect = Defect::BandLost { band: 1, first: (2, 2), last: (3, 5) };
         assert!(spoiled(defect, &place(1)).0[0].is_nan());
         assert_eq!(spoiled(defect, &place(0)).0[0], 80.0);
+    }
+
+    #[test]
+    fn a_shift_moves_a_wave_by_what_it_should() {
+        let band = &Instrument::reduced_interferometer().bands[0];
+        // A wave of five channels, its phase moved by 2 pi / 5 times the shift in channels.
+        let wave = |nu: f64| (2.0 * std::f64::consts::PI * nu / (5.0 * 0.625)).sin();
+        let mut spectrum: Vec<f32> =
+            band.wavenumbers.iter().map(|nu| 50.0 + wave(*nu) as f32).collect();
+        shift(band, 20.0, &mut spectrum);
+        for (value, nu) in spectrum.iter().zip(&band.wavenumbers).skip(40).take(200) {
+            let expected = 50.0 + wave(nu * (1.0 - 20e-6));
+            // f32 at 50: 4e-6; the taper spoils the slope by less than a hundredth of 0.045.
+            assert!((f64::from(*value) - expected).abs() < 1e-3, "{nu}: {value} {expected}");
+        }
     }
 
     #[test]

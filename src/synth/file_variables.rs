@@ -1,6 +1,6 @@
 //! The variables of a synthetic granule: names, units, attributes, storage.
 
-use super::defects::{CHANNEL_DEFECTS, FOOTPRINT_DEFECTS};
+use super::defects::CHANNEL_DEFECTS;
 use super::granule_file::Layout;
 use super::instrument::Band;
 use super::spectra::Maker;
@@ -192,8 +192,8 @@ pub(super) fn define_truth(
     file.variable(
         &draft("defects", ValueKind::I32)
             .attribute("long_name", "what is wrong with the footprint's spectra")
-            .attribute("flag_masks", masks(&FOOTPRINT_DEFECTS))
-            .attribute("flag_meanings", FOOTPRINT_DEFECTS.join(" ")),
+            .attribute("flag_masks", masks(maker.faults.names()))
+            .attribute("flag_meanings", maker.faults.names().join(" ")),
     )?;
     for band in &maker.instrument.bands {
         let channel = named("channel", band);

@@ -1,6 +1,6 @@
 //! What makes a granule: the same recipe gives the same values on any machine.
 
-use super::defects::Defect;
+use super::defects::{Defect, every_kind};
 use super::instrument::Instrument;
 use super::perturbation::Perturbation;
 use super::scene::Setting;
@@ -19,6 +19,8 @@ pub struct Recipe {
     pub seed: u64,
     /// What another climate is drawn from; `None` for the scene as it is.
     pub perturbed: Option<u64>,
+    /// Whether every kind of defect is planted, in place of those of the scene or the climate.
+    pub faulty: bool,
 }
 
 /// The seed of the sample granules.
@@ -37,15 +39,17 @@ impl Recipe {
             seed => format!("_seed{seed}"),
         };
         let perturbed = self.perturbed.map_or_else(String::new, |seed| format!("_perturbed{seed}"));
-        format!("synthetic_brindle_{scene}{shape}{seed}{perturbed}.nc")
+        let faulty = if self.faulty { "_faulty" } else { "" };
+        format!("synthetic_brindle_{scene}{shape}{seed}{perturbed}{faulty}.nc")
     }
 
     /// The command that follows this recipe.
     pub fn command(&self) -> String {
         let perturbed =
             self.perturbed.map_or_else(String::new, |seed| format!(" --perturbed {seed}"));
+        let faulty = if self.faulty { " --faulty" } else { "" };
         format!(
-            "radsieve synth --scene {} --shape {} --seed {}{perturbed}",
+            "radsieve synth --scene {} --shape {} --seed {}{perturbed}{faulty}",
             self.scene.label(),
             self.shape.label(),
             self.seed
@@ -72,6 +76,7 @@ impl Recipe {
                 perturbation.defects(&instrument, &swath)
             }
         };
+        let defects = if self.faulty { every_kind(&instrument, &swath) } else { defects };
         (instrument, swath, defects)
     }
 }
@@ -82,8 +87,13 @@ mod tests {
 
     #[test]
     fn names_say_what_is_inside() {
-        let recipe =
-            |shape, seed| Recipe { scene: SceneName::SeaOfLowen, shape, seed, perturbed: None };
+        let recipe = |shape, seed| Recipe {
+            scene: SceneName::SeaOfLowen,
+            shape,
+            seed,
+            perturbed: None,
+            faulty: false,
+        };
         assert_eq!(recipe(Shape::Sample, 1).file_name(), "synthetic_brindle_sea_of_lowen.nc");
         assert_eq!(
             recipe(Shape::Grating, 7).file_name(),

@@ -10,7 +10,6 @@ mod grid;
 mod limits;
 mod readings;
 mod repeats;
-mod ringing;
 mod sample;
 mod shift;
 mod spectra;

@@ -4,8 +4,8 @@ use rayon::prelude::*;
 
 use super::grid::ScanGrid;
 use super::readings::BandReadings;
-use super::ringing::{Ringing, RingingWindows};
 use crate::screening::unusual::{Basis, ManyResiduals, score};
+use crate::spectral::{Ringing, RingingWindows};
 
 /// The search in f32 keeps what comes this near to a limit; the f64 path decides.
 const NEAR: f64 = 0.97;

@@ -4,8 +4,8 @@ use faer::{Mat, MatRef};
 use rayon::prelude::*;
 
 use super::basis::{Basis, TrainingScores};
-use super::components::{POWER_STEPS, leading_components, product};
-use crate::spectral::{NoiseShape, centre_and_deviation, deviation_from_zero};
+use super::components::{Components, POWER_STEPS, leading_components, product};
+use crate::spectral::{NoiseShape, RingingWindows, centre_and_deviation, deviation_from_zero};
 
 /// Spectra of one band: rows of complete spectra over channels by rising wavenumber.
 #[derive(Debug, Clone)]
@@ -61,6 +61,8 @@ const UNLIKE: f64 = 4.0;
 /// Noise of apodised spectra has at most about three times the power of white noise; before it has
 /// been measured, no component below that counts.
 const APODISED_POWER: f64 = 3.0;
+/// A component that alternates from channel to channel by more than this share is no atmosphere.
+const ALTERNATING: f64 = 0.4;
 /// Fewer spectra than this say nothing about components.
 const FEWEST: usize = 30;
 
@@ -124,18 +126,20 @@ impl State<'_> {
         let normal = |row: usize, channel: usize| {
             (all[(row, channel)] - mean[channel]) / self.noise[channel]
         };
-        let kept = Mat::from_fn(self.kept.len(), self.used.len(), |row, channel| {
+        let fitted = Mat::from_fn(self.kept.len(), self.used.len(), |row, channel| {
             normal(self.kept[row], self.used[channel])
         });
         let wanted = wanted.min(self.kept.len() / 4).min(self.used.len() / 4);
-        let found = leading_components(kept.as_ref(), wanted, power_steps)?;
+        let found = leading_components(fitted.as_ref(), wanted, power_steps)?;
         // Above the edge that noise alone does not pass [Marchenko & Pastur 1967], for apodised noise
         // at most so many times higher as its largest power.
         let ratio = self.used.len() as f64 / self.kept.len() as f64;
         let edge = self.power * (1.0 + ratio.sqrt()).powi(2);
         let components = found.variances.iter().take_while(|variance| **variance > edge).count();
-        let components = components.max(1);
-        let vectors = found.vectors.subcols(0, components).to_owned();
+        let kept = self.without_ringing(&found, components.max(1));
+        let components = kept.len();
+        let vectors =
+            Mat::from_fn(self.used.len(), components, |row, k| found.vectors[(row, kept[k])]);
         let used = Mat::from_fn(self.rows.count(), self.used.len(), |row, channel| {
             normal(row, self.used[channel])
         });
@@ -157,8 +161,26 @@ impl State<'_> {
         let leverages = (0..self.used.len())
             .map(|place| (0..components).map(|k| vectors[(place, k)].powi(2)).sum())
             .collect();
-        let variances = found.variances[..components].to_vec();
+        let variances = kept.iter().map(|k| found.variances[*k]).collect();
         Some(Stage { mean, vectors, variances, residuals, leverages, scores })
+    }
+
+    /// The first components but those that alternate: ringing in some spectra must stay unexplained.
+    fn without_ringing(&self, found: &Components, components: usize) -> Vec<usize> {
+        let windows = RingingWindows::over(&self.adjacent());
+        let rings = |k: &usize| {
+            let share = |windows: &RingingWindows| windows.share(|at| found.vectors[(at, *k)]);
+            windows.as_ref().is_some_and(|windows| share(windows) > ALTERNATING)
+        };
+        (0..components).filter(|k| !rings(k)).collect()
+    }
+
+    /// For each used channel whether the next one is used, too, and its neighbour without a gap.
+    fn adjacent(&self) -> Vec<bool> {
+        let behind = |channel: &usize| {
+            self.rows.adjacent[*channel] && self.used.binary_search(&(channel + 1)).is_ok()
+        };
+        self.used.iter().map(behind).collect()
     }
 
     /// Channels that were set aside, as far as the components of the others explain them: by least
@@ -264,13 +286,10 @@ impl State<'_> {
         let mean = kept.iter().sum::<f64>() / kept.len() as f64;
         let squares: f64 = kept.iter().map(|score| (score - mean).powi(2)).sum();
         let of = |values: &[f64]| self.used.iter().map(|channel| values[*channel]).collect();
-        let behind = |channel: &usize| {
-            rows.adjacent[*channel] && self.used.binary_search(&(channel + 1)).is_ok()
-        };
         let basis = Basis {
             channels: self.used.iter().map(|channel| rows.channels[*channel]).collect(),
             wavenumbers: of(&rows.wavenumbers),
-            adjacent: self.used.iter().map(behind).collect(),
+            adjacent: self.adjacent(),
             mean: of(&stage.mean),
             noise: of(&self.noise),
             vectors: (0..stage.vectors.ncols())

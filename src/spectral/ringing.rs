@@ -67,6 +67,16 @@ impl RingingWindows {
         self.weights.iter().enumerate().map(|(at, weight)| weight * value(at)).sum()
     }
 
+    /// How much of a direction (of unit length over the channels) is alternation: 1 for channels of
+    /// alternating sign and equal size, little for anything else.
+    pub fn share(&self, direction: impl Fn(usize) -> f64) -> f64 {
+        let covered = self.first.iter().flat_map(|first| *first..first + WINDOW);
+        let power: f64 = covered.map(|at| direction(at).powi(2)).sum();
+        let mean = power / (self.first.len() * WINDOW) as f64;
+        let amplitude = self.of(&direction).amplitude;
+        if mean > 0.0 { amplitude.powi(2) / mean } else { 0.0 }
+    }
+
     /// Power, over the expected one, from which on noise is not to blame: `limit`, or more where there
     /// are few windows. The power is a mean of squares, of deviation `sqrt(2 / windows)`.
     pub fn limit(&self, limit: f64) -> f64 {
@@ -113,6 +123,17 @@ mod tests {
         // A line structure of period 2.5 channels leaks through the taper by a fiftieth.
         let lines = windows.of(|at| (2.0 * PI * at as f64 / 2.5).sin());
         assert!(lines.amplitude < 0.025, "{}", lines.amplitude);
+    }
+
+    #[test]
+    fn a_direction_that_alternates_is_known() {
+        let windows = RingingWindows::over(&[true; 240]).unwrap();
+        let sign = |at: usize| if at.is_multiple_of(2) { 0.1 } else { -0.1 };
+        assert!((windows.share(sign) - 1.0).abs() < 1e-12);
+        assert!(windows.share(|at| (2.0 * PI * at as f64 / 2.5).sin()) < 1e-3);
+        // White: 9 / 12^2 of it, the power of the window over the square of its sum.
+        let white = noise(240, 9);
+        assert!((windows.share(|at| white[at]) - 0.0625).abs() < 0.06);
     }
 
     #[test]
