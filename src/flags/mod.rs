@@ -32,6 +32,7 @@ mod replay;
 #[cfg(test)]
 mod replay_tests;
 mod review_state;
+mod rulebook_changes;
 mod spot_check;
 mod state;
 mod vocabulary;
@@ -50,6 +51,7 @@ pub use ledger_writer::{LedgerEvent, LedgerWriter, NotKept};
 pub use quality_map::{QualityMap, Treatment};
 pub use replay::Replay;
 pub use review_state::{GranuleState, ReviewState};
+pub use rulebook_changes::RulebookChange;
 pub use spot_check::{ErrorRate, SpotCheck, Stratum, pooled};
 pub use state::{ChannelFlags, Counts, DOUBTFUL, FlagState};
 pub use vocabulary::{FlagExtension, FlagKind, Scope, Vocabulary, VocabularyError};

@@ -6,6 +6,7 @@
 //! **Never** draws or prints.
 
 mod cases;
+mod adopting;
 mod exporting;
 mod many_spectra;
 mod producer;
@@ -21,6 +22,7 @@ mod spectrum;
 mod suggestions;
 mod verbs;
 
+pub use adopting::{ThresholdChange, adopt_threshold};
 pub use cases::Case;
 pub use exporting::ExportedBy;
 pub use many_spectra::ManySpectra;

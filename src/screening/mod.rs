@@ -10,6 +10,7 @@
 
 mod builtin;
 mod catalogue_used;
+mod change_threshold;
 mod check_names;
 mod combine;
 mod evidence;
@@ -37,6 +38,7 @@ mod rulebook_tests;
 mod worked_tests;
 
 pub use builtin::{BUILTIN_TEXT, builtin};
+pub use change_threshold::with_threshold;
 pub use evidence::{
     Evidence, FamilyVoice, FlagEvidence, HealthEvidence, Reconstruction, TestEvidence,
 };

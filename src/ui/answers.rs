@@ -20,6 +20,7 @@ use super::picking;
 use super::place::Place;
 use super::screening;
 use super::shown_layer::ShownLayer;
+use super::spreading;
 use super::tracing;
 use super::turning;
 use super::undoing;
@@ -48,6 +49,8 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
             Vec::new()
         }
         Answer::Exported { request, found } => exported(app, request, found),
+        Answer::Against { request, found } => spreading::against_found(app, request, found),
+        Answer::Adopted { request, found } => adopted(app, request, found),
         Answer::Selected { request, join, found } => picking::selected(app, request, join, found),
     }
 }
@@ -262,7 +265,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
     match found {
         Ok(layer) => {
             if bench.layer.text != bench.wanted {
-                bench.set_side(None);
+                bench.layer_leaves();
                 let new = ShownLayer::waiting(&bench.wanted);
                 let before = std::mem::replace(&mut bench.layer, new);
                 bench.other_layer = Some(before).filter(|layer| !layer.values.is_empty());
@@ -297,6 +300,24 @@ fn indices(app: &mut App, request: u64, found: Vec<Result<Layer, String>>) -> Ve
         });
     }
     Vec::new()
+}
+
+/// The rulebook has changed: the tests run anew.
+fn adopted(app: &mut App, request: u64, found: Result<String, String>) -> Vec<Job> {
+    if awaited(app, |bench| bench.awaited.adopt == request).is_none() {
+        return Vec::new();
+    }
+    match found {
+        Ok(words) => {
+            let jobs = screening::start(app);
+            app.say(words);
+            jobs
+        }
+        Err(why) => {
+            app.message = (format!("the rulebook stays as it was: {why}"), Tone::Bad);
+            Vec::new()
+        }
+    }
 }
 
 fn quality(app: &mut App, request: u64, found: Vec<Quality>) -> Vec<Job> {

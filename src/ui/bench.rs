@@ -23,6 +23,7 @@ use super::selecting::{Selecting, Shape};
 use super::shown_layer::ShownLayer;
 use super::side::Side;
 use super::spectrum_window::SpectrumWindow;
+use super::spreading::Spread;
 use super::trace_look::{TraceLook, TraceQuantity};
 
 /// The footprints that can be pinned at once; more spectra cannot be told apart.
@@ -47,6 +48,8 @@ pub struct Bench {
     pub cursor: usize,
     /// What is selected, or being drawn.
     pub selecting: Selecting,
+    /// What the Spread is about.
+    pub spread: Spread,
     /// What is left in doubt.
     pub doubt: Doubt,
     /// The layer on show.
@@ -128,6 +131,7 @@ impl Bench {
             record: RecordState::Reading,
             cursor: 0,
             selecting: Selecting::default(),
+            spread: Spread::default(),
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),
             other_layer: None,

@@ -178,6 +178,10 @@ pub struct Awaited {
     pub beside: u64,
     /// Running the tests.
     pub screen: u64,
+    /// Evaluating the second layer of the Spread.
+    pub against: u64,
+    /// Taking a threshold over into the rulebook.
+    pub adopt: u64,
     /// Finding footprints to select.
     pub select: u64,
     /// Writing an export.

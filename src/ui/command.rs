@@ -18,6 +18,10 @@ pub enum Command {
     Flag(String, Option<String>),
     /// Withdraw a flag from the selection, with a reason if there is one.
     Withdraw(String, Option<String>),
+    /// A second layer for the Spread; none where there are no words.
+    Against(String),
+    /// Take a test in hand, to try its threshold.
+    Try(String),
     /// Select footprints.
     Select(Join, Wanted),
     /// Select all footprints on one side of a value of the layer.
@@ -63,6 +67,18 @@ const WORDED: &[Worded] = &[
         words: "NAME [WHY]",
         help: "withdraw a flag from the selection",
         parse: withdraw,
+    },
+    Worded {
+        name: "against",
+        words: "[EXPR]",
+        help: "a second layer for the Spread; without words one again",
+        parse: |words| Ok(Command::Against(words.to_owned())),
+    },
+    Worded {
+        name: "try",
+        words: "TEST",
+        help: "take a test of the rulebook in hand and try its threshold",
+        parse: |words| sentence(words, "the test's name").map(Command::Try),
     },
     Worded {
         name: "select",
@@ -242,7 +258,8 @@ pub fn completions(before_cursor: &str, known: &Known) -> Vec<String> {
         Some((name, words)) => {
             let words = words.trim_start();
             let (lead, candidates) = match name {
-                "layer" => ("", known.layers.clone()),
+                "layer" | "against" => ("", known.layers.clone()),
+                "try" => ("", known.tests.clone()),
                 "flag" | "withdraw" => ("", known.flags.clone()),
                 "select" => (sign_of(words), selections(known)),
                 _ => return Vec::new(),

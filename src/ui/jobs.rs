@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use crate::flags::{FootprintSet, GranuleIdentity, LedgerReading};
 use crate::layers::Layer;
-use crate::review::{ManySpectra, Record, Review, Spectrum};
+use crate::review::{ManySpectra, Record, Review, Spectrum, ThresholdChange};
 use crate::screening::Screened;
 use crate::system::Cancel;
 use crate::tray::Standing;
@@ -13,11 +13,30 @@ use crate::tray::Standing;
 use super::bench::Quality;
 use super::place::Place;
 use super::selecting::{Found, Join};
+use super::spreading::Against;
 use super::trace_look::{Beside, ReferenceFile};
 
 /// Something to be done. Each carries the number of its request, which the answer repeats: an
 /// answer whose number is no longer waited for is dropped.
 pub enum Job {
+    /// Evaluate the second layer of the Spread.
+    Against {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The expression.
+        text: String,
+        /// Ends it early.
+        cancel: Cancel,
+    },
+    /// Take a threshold over into the campaign's rulebook.
+    Adopt {
+        /// The request.
+        request: u64,
+        /// What changes.
+        change: ThresholdChange,
+    },
     /// Look what the ledgers say about a granule, without opening it on the table.
     Standing {
         /// The entry of the Tray.
@@ -186,6 +205,20 @@ pub enum TraceFound {
 
 /// What a job found.
 pub enum Answer {
+    /// The second layer of the Spread was evaluated.
+    Against {
+        /// The request.
+        request: u64,
+        /// The layer.
+        found: Result<Against, String>,
+    },
+    /// A threshold was taken over: in words.
+    Adopted {
+        /// The request.
+        request: u64,
+        /// What was done.
+        found: Result<String, String>,
+    },
     /// What the ledgers say about an entry of the Tray, or why it can't be used.
     Standing {
         /// The entry.

@@ -64,6 +64,12 @@ pub enum Action {
     Join,
     Invert,
     Reselect,
+    NextTest,
+    PreviousTest,
+    Valley,
+    TurnSide,
+    AskAgainst,
+    Adopt,
     Side,
     Undo,
     Redo,
@@ -97,6 +103,8 @@ pub enum Group {
     Spectrum,
     /// The layer along lines, detectors or granules.
     Series,
+    /// How values lie, and thresholds.
+    Thresholds,
     /// What a decision is about.
     Selecting,
     /// Flags and other decisions.
@@ -107,11 +115,12 @@ pub enum Group {
 
 impl Group {
     /// All headings, in the order of the help.
-    pub const ALL: [Group; 7] = [
+    pub const ALL: [Group; 8] = [
         Group::Moving,
         Group::Layers,
         Group::Spectrum,
         Group::Series,
+        Group::Thresholds,
         Group::Selecting,
         Group::Deciding,
         Group::Program,
@@ -123,6 +132,7 @@ impl Group {
             Group::Layers => Some(Pane::Field),
             Group::Spectrum => Some(Pane::Trace),
             Group::Series => Some(Pane::Strip),
+            Group::Thresholds => Some(Pane::Spread),
             Group::Moving | Group::Selecting | Group::Deciding | Group::Program => None,
         }
     }
@@ -134,6 +144,7 @@ impl Group {
             Group::Layers => "Field: layers",
             Group::Spectrum => "Trace: spectra",
             Group::Series => "Strip: drifts and stripes",
+            Group::Thresholds => "Spread: thresholds",
             Group::Selecting => "Selecting",
             Group::Deciding => "Deciding",
             Group::Program => "Program",
@@ -174,7 +185,7 @@ const fn letter(letter: char) -> Key {
     Key::char(letter)
 }
 
-use Group::{Deciding, Layers, Moving, Program, Selecting, Series, Spectrum};
+use Group::{Deciding, Layers, Moving, Program, Selecting, Series, Spectrum, Thresholds};
 
 /// Every key, in the order of the help.
 pub const BINDINGS: &[Binding] = &[
@@ -239,6 +250,18 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('x')], Action::Pin, "pin", Spectrum, "pin the footprint to compare"),
     row(&[letter('X')], Action::Unpin, "unpin", Spectrum, "take all pins off"),
     row(&[letter('s')], Action::StripAlong, "strip-along", Series, "along lines, positions, …"),
+    row(
+        &[letter('}')],
+        Action::NextTest,
+        "next-test",
+        Thresholds,
+        "next test in hand, or the layer",
+    ),
+    row(&[letter('{')], Action::PreviousTest, "previous-test", Thresholds, "the test before"),
+    row(&[letter('K')], Action::Valley, "valley", Thresholds, "threshold to the valley"),
+    row(&[letter('J')], Action::TurnSide, "turn-side", Thresholds, "the other side of it"),
+    row(&[letter('D')], Action::Adopt, "ask-adopt", Thresholds, "take it into the rulebook"),
+    row(&[letter('|')], Action::AskAgainst, "ask-against", Thresholds, "a second layer upwards"),
     row(&[letter('v')], Action::Box, "box", Selecting, "begin a box, or keep it"),
     row(&[letter('V')], Action::Polygon, "polygon", Selecting, "polygon: a corner here"),
     row(&[letter('t')], Action::Side, "ask-side", Selecting, "all on one side of a layer value"),
@@ -266,6 +289,7 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('1')], Action::Pane(Pane::Tray), "tray", Program, "to the Tray"),
     row(&[letter('2')], Action::Pane(Pane::Field), "field", Program, "to the Field"),
     row(&[letter('3')], Action::Pane(Pane::Trace), "trace", Program, "to the Trace"),
+    row(&[letter('4')], Action::Pane(Pane::Spread), "spread", Program, "to the Spread"),
     row(&[letter('5')], Action::Pane(Pane::Strip), "strip", Program, "to the Strip"),
     row(&[letter('6')], Action::Pane(Pane::Evidence), "evidence", Program, "to the Evidence"),
     row(&[letter('7')], Action::Pane(Pane::Ledger), "ledger", Program, "to the Ledger"),

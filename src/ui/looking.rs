@@ -100,7 +100,7 @@ pub fn other_layer(app: &mut App) -> Vec<Job> {
         app.say("no other layer was on show yet");
         return Vec::new();
     };
-    bench.set_side(None);
+    bench.layer_leaves();
     bench.wanted.clone_from(&other.text);
     bench.other_layer = Some(std::mem::replace(&mut bench.layer, other));
     // It may have been evaluated before all spectra were there.

@@ -49,6 +49,7 @@ mod side;
 mod signing;
 mod signals;
 mod spectrum_window;
+mod spreading;
 mod terminal;
 mod trace_look;
 mod tracing;

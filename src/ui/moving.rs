@@ -9,6 +9,7 @@ use super::ledger;
 use super::looking;
 use super::panes::Pane;
 use super::picking;
+use super::spreading;
 use super::views;
 
 /// Rows that a page moves where the Field is not on the screen.
@@ -23,6 +24,9 @@ pub fn step(app: &mut App, action: Action) -> Vec<Job> {
         return Vec::new();
     }
     if app.focus() == Pane::Evidence && in_evidence(app, action) {
+        return Vec::new();
+    }
+    if app.focus() == Pane::Spread && spreading::step(app, action) {
         return Vec::new();
     }
     let page = page(app);
@@ -122,7 +126,14 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
             picking::draw_with_mouse(app, mouse.button, footprint);
             go(app, footprint)
         }
-        (Button::Release, Pane::Field) => picking::mouse_up(app),
+        (Button::Press | Button::Drag, Pane::Spread) => {
+            app.panes.focus_on(Pane::Spread);
+            match views::spread_place_under(app, mouse.column, mouse.row) {
+                Some(place) => spreading::click(app, mouse.button, place),
+                None => Vec::new(),
+            }
+        }
+        (Button::Release, Pane::Field | Pane::Spread) => picking::mouse_up(app),
         (Button::Press, Pane::Tray) => click_in_tray(app, mouse),
         (Button::Press | Button::Drag, Pane::Trace) => {
             app.panes.focus_on(Pane::Trace);

@@ -57,6 +57,8 @@ pub enum Purpose {
         /// Where.
         selection: Selection,
     },
+    /// The reason of taking a threshold over into the rulebook.
+    Adopt,
     /// The reason of setting the granule aside.
     Aside,
     /// A remark on a selection.

@@ -13,11 +13,13 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
 use super::overlay::Selection;
+use super::panes::Pane;
 use super::selecting::{Found, Join, Says, Shape, Wanted};
 
 /// Does what a key of selecting says.
 pub fn pick(app: &mut App, action: Action) -> Vec<Job> {
     match action {
+        Action::Box | Action::Polygon if app.focus() == Pane::Spread => brush(app, action),
         Action::Box => draw_box(app),
         Action::Polygon => draw_polygon(app),
         Action::Invert => invert(app),
@@ -49,6 +51,33 @@ fn draw_polygon(app: &mut App) -> Vec<Job> {
     }
     let (corner, keep) = (app.keymap.hint(Action::Polygon), app.keymap.hint(Action::Box));
     app.say(format!("polygon: {corner} sets a corner, {keep} keeps it"));
+    Vec::new()
+}
+
+/// Begins a range of values, or a rectangle or polygon on the picture of two layers; or keeps it.
+fn brush(app: &mut App, action: Action) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    let Some(x) = bench.spread.x else {
+        app.say("the arrows set the place to begin at");
+        return Vec::new();
+    };
+    let at = (x, bench.spread.y.unwrap_or(0.0));
+    let two = bench.spread.against.is_some();
+    let shape = match (&mut bench.selecting.shape, action) {
+        (Some(Shape::Region(corners)), Action::Polygon) if corners.last() != Some(&at) => {
+            corners.push(at);
+            return Vec::new();
+        }
+        (Some(Shape::Range(_) | Shape::Rectangle(_) | Shape::Region(_)), _) => {
+            return keep_shape(app);
+        }
+        (_, Action::Polygon) if two => Shape::Region(vec![at]),
+        _ if two => Shape::Rectangle(at),
+        _ => Shape::Range(x),
+    };
+    bench.selecting.shape = Some(shape);
+    let keep = app.keymap.hint(Action::Box);
+    app.say(format!("move on with the arrows; {keep} keeps it"));
     Vec::new()
 }
 
@@ -160,7 +189,7 @@ fn select_by_test(app: &mut App, join: Join, name: &str, says: Says) -> Vec<Job>
 }
 
 /// The test of this name, or the only one whose name begins like this.
-fn test_named(tests: &[Test], name: &str) -> Option<usize> {
+pub fn test_named(tests: &[Test], name: &str) -> Option<usize> {
     let exact = tests.iter().position(|test| test.name == name);
     exact.or_else(|| {
         let mut begin = tests.iter().enumerate().filter(|(_, test)| test.name.starts_with(name));
@@ -230,7 +259,7 @@ pub fn draw_with_mouse(app: &mut App, button: Button, footprint: usize) {
 /// A box drawn with the mouse is kept when its button comes up.
 pub fn mouse_up(app: &mut App) -> Vec<Job> {
     match app.bench().and_then(|bench| bench.selecting.shape.as_ref()) {
-        Some(Shape::Box(_)) => keep_shape(app),
+        Some(Shape::Box(_) | Shape::Range(_) | Shape::Rectangle(_)) => keep_shape(app),
         _ => Vec::new(),
     }
 }

@@ -21,6 +21,7 @@ pub fn open(app: &mut App, action: Action) -> Vec<Job> {
         Action::Help => Overlay::Help(0),
         Action::Problems => Overlay::Problems(0),
         Action::Command => Overlay::Line(LinePrompt::new(Purpose::Command, "")),
+        Action::AskAgainst => Overlay::Line(LinePrompt::new(Purpose::Command, "against ")),
         Action::AskLayer => Overlay::Line(LinePrompt::new(Purpose::Command, "layer ")),
         Action::AskChannel => Overlay::Line(LinePrompt::new(Purpose::Command, "go ")),
         Action::SetAside => Overlay::Line(LinePrompt::new(Purpose::Aside, "")),

@@ -52,6 +52,7 @@ fn lane_of(job: &Job) -> Lane {
             Lane::Alone
         }
         Job::Pinned { .. } | Job::Reread { .. } | Job::Select { .. } => Lane::Alone,
+        Job::Against { .. } | Job::Adopt { .. } => Lane::Alone,
         Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
     }
 }

@@ -13,6 +13,7 @@ use super::looking;
 use super::overlay::{Deed, LinePrompt, Overlay, Purpose};
 use super::picking;
 use super::side::Side;
+use super::spreading;
 use super::tracing;
 use super::update::act;
 
@@ -180,6 +181,7 @@ fn submit(app: &mut App, mut prompt: LinePrompt) -> Vec<Job> {
         Purpose::Reason { give, flag, selection } => {
             deciding::carry_out(app, Deed::Flag { give, flag, why: words(&text) }, selection)
         }
+        Purpose::Adopt => spreading::adopt(app, words(&text)),
         Purpose::Aside => deciding::change(app, |record, now| {
             record.set_aside(&text, now).map(|()| "set aside".to_owned())
         }),
@@ -214,6 +216,8 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
         Command::Side(side) => select_side(app, side),
         Command::Planck(kelvins) => tracing::planck(app, kelvins),
         Command::Reference(path) => tracing::reference_file(app, &path),
+        Command::Against(text) => spreading::against(app, &text),
+        Command::Try(name) => spreading::take_test(app, &name),
         Command::Select(join, wanted) => picking::select(app, join, wanted),
         Command::Range(range) => looking::set_range(app, range),
         Command::Aside(why) => deciding::change(app, |record, now| {

@@ -8,8 +8,8 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, tracing,
-    turning, typing,
+    answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, spreading,
+    tracing, turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -92,14 +92,20 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::Flag | A::Again | A::Withdraw | A::Assess | A::Undo | A::Redo => {
             deciding::decide(app, action)
         }
+        A::NextTest | A::PreviousTest | A::Valley | A::TurnSide => spreading::act(app, action),
+        A::Adopt => spreading::ask_to_adopt(app),
         A::Box | A::Polygon | A::Join | A::Invert | A::Reselect => picking::pick(app, action),
         A::SignOff | A::Reopen => deciding::decide(app, action),
         A::RunTests => screening::start(app),
         A::NextCase | A::PreviousCase | A::Accept | A::Overrule => doubting::doubt(app, action),
         A::Export => deciding::export(app, None),
-        A::AskLayer | A::AskChannel | A::Side | A::Comment | A::SetAside | A::Command => {
-            prompts::open(app, action)
-        }
+        A::AskLayer
+        | A::AskAgainst
+        | A::AskChannel
+        | A::Side
+        | A::Comment
+        | A::SetAside
+        | A::Command => prompts::open(app, action),
         A::Help | A::Problems => prompts::open(app, action),
         A::NextPane | A::PreviousPane => {
             let pane = next_pane(app, action == A::NextPane);

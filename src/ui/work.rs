@@ -6,7 +6,7 @@ use std::time::{Duration, Instant};
 
 use crate::flags::read_ledgers;
 use crate::granule::{GranuleError, VariableRole};
-use crate::review::{ExportedBy, Record, ReferenceSpectrum, Review, rulebook_of};
+use crate::review::{ExportedBy, Record, ReferenceSpectrum, Review, adopt_threshold, rulebook_of};
 use crate::screening::Screened;
 use crate::system::{Cancel, clean_text};
 use crate::tray::Standing;
@@ -16,6 +16,7 @@ use super::bench::Quality;
 use super::jobs::{Answer, Job, TraceAsk, TraceFound};
 use super::place;
 use super::selecting::where_holds;
+use super::spreading::Against;
 use super::trace_look::{Beside, ReferenceFile};
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
@@ -28,6 +29,19 @@ const MOST_QUALITY: usize = 16;
 /// Does a job and sends its answers.
 pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
     match job {
+        Job::Against { request, review, text, cancel } => {
+            let layer = review.layer(text, cancel).map(|layer| Against {
+                text: text.clone(),
+                unit: layer.unit.label().to_owned(),
+                values: layer.values,
+            });
+            send(Answer::Against { request: *request, found: layer });
+        }
+        Job::Adopt { request, change } => {
+            let found = adopt_threshold(&outside.campaign, &outside.author, change);
+            let found = found.map_err(|error| error.to_string());
+            send(Answer::Adopted { request: *request, found });
+        }
         Job::Standing { entry, path } => {
             send(Answer::Standing { entry: *entry, found: standing(path, outside) });
         }
@@ -101,6 +115,8 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
 pub fn failed(job: &Job, why: &str) -> Option<Answer> {
     let why = || why.to_owned();
     Some(match job {
+        Job::Against { request, .. } => Answer::Against { request: *request, found: Err(why()) },
+        Job::Adopt { request, .. } => Answer::Adopted { request: *request, found: Err(why()) },
         Job::Standing { entry, .. } => Answer::Standing { entry: *entry, found: Err(why()) },
         Job::Open { request, .. } => Answer::Opened { request: *request, found: Err(why()) },
         Job::Fill { request, .. } => Answer::Filled { request: *request, found: Err(why()) },

@@ -7,6 +7,7 @@ mod moving;
 mod program;
 mod screening;
 mod selecting;
+mod spreading;
 mod turning;
 mod undoing;
 

@@ -11,6 +11,7 @@ pub mod ledger;
 pub mod margin_bar;
 pub mod messages;
 pub mod prompt;
+pub mod spread;
 pub mod status;
 pub mod strip;
 pub mod trace;

@@ -11,6 +11,8 @@ pub enum Pane {
     Field,
     /// The spectrum.
     Trace,
+    /// How the values of a layer lie.
+    Spread,
     /// The layer along scan lines, by detector or along granules.
     Strip,
     /// What is known of the footprint under the cursor.
@@ -33,10 +35,11 @@ const fn row(pane: Pane, name: &'static str, parts: [Part; 3]) -> Row {
 
 /// Panes that share a part of the screen take turns there: the first stands there until another is
 /// asked for.
-const ROWS: [Row; 6] = [
+const ROWS: [Row; 7] = [
     row(Pane::Tray, "Tray", [Part::Left; 3]),
     row(Pane::Field, "Field", [Part::Middle; 3]),
     row(Pane::Trace, "Trace", [Part::Bottom; 3]),
+    row(Pane::Spread, "Spread", [Part::Bottom, Part::Corner, Part::First]),
     row(Pane::Strip, "Strip", [Part::Bottom, Part::Corner, Part::Second]),
     row(Pane::Evidence, "Evidence", [Part::Right; 3]),
     row(Pane::Ledger, "Ledger", [Part::Right, Part::Right, Part::Third]),

@@ -127,6 +127,16 @@ impl Selecting {
         there
     }
 
+    /// Lets go of what is being drawn on the Spread.
+    pub fn drop_spread_shape(&mut self) {
+        if matches!(
+            self.shape,
+            Some(Shape::Threshold | Shape::Range(_) | Shape::Rectangle(_) | Shape::Region(_))
+        ) {
+            self.shape = None;
+        }
+    }
+
     /// Lets go of everything, as after a decision.
     pub fn clear(&mut self) {
         self.replace(None);

@@ -16,6 +16,14 @@ pub enum Shape {
     Polygon(Vec<usize>),
     /// All on one side of a value of the layer.
     Side(Side),
+    /// All beyond the threshold on the Spread.
+    Threshold,
+    /// From this value on the Spread to the place that the keys move.
+    Range(f64),
+    /// From this place on the picture of two layers to the one that the keys move.
+    Rectangle((f64, f64)),
+    /// Over these places on the picture of two layers and the one that the keys move.
+    Region(Vec<(f64, f64)>),
 }
 
 impl Shape {
@@ -30,8 +38,49 @@ impl Shape {
             }
             Shape::Polygon(corners) => polygon(bench, corners),
             Shape::Side(side) => bench.side_selection(*side),
+            Shape::Threshold | Shape::Range(_) => on_one_layer(self, bench),
+            Shape::Rectangle(from) => {
+                let to = (bench.spread.x.unwrap_or(from.0), bench.spread.y.unwrap_or(from.1));
+                let corners = [*from, (to.0, from.1), to, (from.0, to.1)];
+                on_two_layers(bench, &corners)
+            }
+            Shape::Region(corners) => {
+                let last = bench.spread.x.zip(bench.spread.y);
+                let corners: Vec<(f64, f64)> = corners.iter().copied().chain(last).collect();
+                on_two_layers(bench, &corners)
+            }
         }
     }
+}
+
+/// The footprints beyond the threshold or in a range of the Spread's values.
+fn on_one_layer(shape: &Shape, bench: &Bench) -> Selection {
+    let values = bench.spread_values();
+    let x = bench.spread.x.unwrap_or(f64::NAN);
+    let is_in = |value: f64| match shape {
+        Shape::Range(from) => from.min(x) <= value && value <= from.max(x),
+        _ => bench.spread_sense().margin(value, x, 1.0) > 0.0,
+    };
+    let all = values.iter().enumerate();
+    let footprints: FootprintSet =
+        all.filter(|(_, value)| is_in(**value)).map(|(one, _)| one).collect();
+    let (name, count) = (bench.spread_name(), footprints.len());
+    let words = match shape {
+        Shape::Range(from) => format!("{count} where {name} is {} to {}", from.min(x), from.max(x)),
+        _ => format!("{count} where {name} {} {x}", bench.spread_sense().symbol()),
+    };
+    Selection { footprints, words }
+}
+
+/// The footprints whose two values lie in a polygon.
+fn on_two_layers(bench: &Bench, corners: &[(f64, f64)]) -> Selection {
+    let across = bench.spread_values();
+    let upwards = bench.spread.against.as_ref().map_or(&[][..], |against| &against.values);
+    let pairs = across.iter().copied().zip(upwards.iter().copied()).enumerate();
+    let footprints: FootprintSet =
+        pairs.filter(|(_, pair)| is_inside(corners, *pair)).map(|(one, _)| one).collect();
+    let words = format!("{} on the Spread", footprints.len());
+    Selection { footprints, words }
 }
 
 fn polygon(bench: &Bench, corners: &[usize]) -> Selection {

@@ -8,6 +8,7 @@ mod field_signs;
 mod help;
 mod ledger;
 mod overlay;
+mod spread;
 mod status;
 mod strip;
 mod tests_say;
@@ -20,6 +21,7 @@ pub use evidence::evidence_rows;
 pub use field::footprint_under;
 pub use help::{help_groups, problem_rows};
 pub use overlay::draw_overlay;
+pub use spread::spread_place_under;
 pub use status::{hints, side_preview, status_facts};
 pub use strip::strip_footprint_under;
 pub use trace::wavenumber_under;
@@ -39,6 +41,7 @@ pub fn draw_pane(app: &App, pane: Pane, area: Rect, buffer: &mut Buffer) {
         Pane::Tray => tray::draw,
         Pane::Field => field::draw,
         Pane::Trace => trace::draw,
+        Pane::Spread => spread::draw,
         Pane::Strip => strip::draw,
         Pane::Evidence => evidence::draw,
         Pane::Ledger => ledger::draw,

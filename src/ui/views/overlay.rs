@@ -3,6 +3,7 @@
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 
+use crate::screening::Threshold;
 use crate::ui::app::App;
 use crate::ui::overlay::{FlagPrompt, LinePrompt, Overlay, Purpose};
 use crate::ui::panes::command::{self, CommandView, Completion};
@@ -72,6 +73,11 @@ fn draw_line(
                 buffer,
             );
         }
+        Purpose::Adopt => {
+            let title = adopt_title(app);
+            let hint = "kept in the campaign's ledger; Enter without words gives no reason";
+            return draw_text(app, &title, prompt, hint, screen, buffer);
+        }
         Purpose::Aside => {
             return draw_text(app, "Set aside: why?", prompt, "a reason is needed", screen, buffer);
         }
@@ -94,6 +100,18 @@ fn draw_line(
         problem: &prompt.problem,
     };
     command::draw(&view, &app.theme, command_line, buffer);
+}
+
+/// What is about to change in the rulebook.
+fn adopt_title(app: &App) -> String {
+    let bench = app.bench();
+    let test = bench.and_then(|bench| Some((bench.spread_test()?, bench.spread.x?)));
+    let Some(((screened, place, way), to)) = test else { return String::new() };
+    let name = &screened.rulebook.tests[place].name;
+    match way.threshold {
+        Threshold::Number(old) => format!("{name}: {to} in place of {old}: why?"),
+        _ => format!("{name}: its threshold moved by {to}: why?"),
+    }
 }
 
 fn draw_text(

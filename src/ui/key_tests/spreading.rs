@@ -1,0 +1,118 @@
+//! The Spread: a threshold tried and taken over, and what is brushed there.
+
+use super::{ALL, one_granule};
+use crate::flags::Campaign;
+use crate::ui::event::{Button, Event, Input, Mouse};
+use crate::ui::panes::Pane;
+use crate::ui::spreading::Source;
+use crate::ui::trial::{POSITIONS, Trial};
+
+fn selection(trial: &Trial) -> Vec<usize> {
+    trial.bench().selection().footprints.iter().collect()
+}
+
+#[test]
+fn a_threshold_moves_and_the_field_and_the_counts_follow() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("4");
+    let screen = trial.screen(80, 24);
+    assert!(screen.contains("Spread bt(900)"), "{screen}");
+    assert!(screen.contains("30 of 30 with a value, 0 without"), "{screen}");
+    // Footprint n is at 250 + n kelvins, and a step is half a kelvin: the valley is in the middle.
+    trial.keys("K");
+    assert!(trial.message().contains("Otsu 1979"), "{}", trial.message());
+    let valley = trial.bench().spread.x.unwrap();
+    assert!((264.0..=265.0).contains(&valley), "{valley}");
+    trial.keys("Left Left");
+    let x = trial.bench().spread.x.unwrap();
+    assert!((valley - x - 1.0).abs() < 1e-9, "{x}");
+    assert_eq!(selection(&trial).len(), (x - 250.0).ceil() as usize);
+    assert!(trial.screen(80, 24).contains(&format!("< {x}: ")));
+    trial.keys("J");
+    assert_eq!(selection(&trial).len(), ALL - (x - 250.0).floor() as usize - 1);
+    trial.keys("J f c");
+    assert_eq!(trial.flagged("cloudy").len(), (x - 250.0).ceil() as usize);
+}
+
+#[test]
+fn a_threshold_is_measured_against_what_persons_decided() {
+    let (_place, mut trial) = one_granule();
+    // The first row is flagged, the second looked at and left without a flag.
+    trial.keys("v End f c Down Home v End a 4 Right");
+    trial.types(":select all").keys("Enter Esc");
+    let x = trial.bench().spread.x.unwrap();
+    let screen = trial.screen(120, 24);
+    let false_alarms = (x - 256.0).ceil().clamp(0.0, POSITIONS as f64);
+    assert!(
+        screen.contains(&format!("decided 12: 6 hit, 0 missed, {false_alarms} false")),
+        "{screen}"
+    );
+}
+
+#[test]
+fn a_range_is_brushed_by_key_and_by_mouse() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("4 K Left v PageUp");
+    assert!(selection(&trial).len() > 2);
+    trial.keys("v Esc Esc m");
+    trial.screen(80, 24);
+    let area = trial.app.area_of(Pane::Spread).unwrap();
+    let mut send = |button: Button, column: u16| {
+        let mouse = Mouse { button, column, row: area.y + 4 };
+        trial.event(Event::Input(Input::Mouse(mouse)));
+        trial.settle();
+    };
+    send(Button::Press, area.x + 1);
+    send(Button::Drag, area.x + 20);
+    send(Button::Release, area.x + 20);
+    let kept = trial.bench().selecting.kept().unwrap().footprints.clone();
+    assert!(kept.contains(1) && !kept.contains(ALL - 1), "{kept:?}");
+    assert!(trial.screen(80, 24).contains("^"), "what is selected is marked");
+}
+
+#[test]
+fn two_layers_lie_against_each_other_and_a_rectangle_selects() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":against lon").keys("Enter");
+    let screen = trial.screen(80, 24);
+    assert!(screen.contains("Spread bt(900) against lon"), "{screen}");
+    assert!(screen.contains("30 of 30 with both values"), "{screen}");
+    trial.keys("Left v");
+    (0..60).for_each(|_| {
+        trial.keys("PageUp Up");
+    });
+    trial.keys("v");
+    let kept = trial.bench().selecting.kept().unwrap().footprints.clone();
+    // From the middle of both on: the warmer half, and the eastern one of it.
+    assert!(kept.contains(ALL - 1) && !kept.contains(0), "{kept:?}");
+    assert!(kept.iter().all(|one| one % POSITIONS >= 2 && one >= ALL / 2 - 1), "{kept:?}");
+    trial.types(":against").keys("Enter");
+    assert!(trial.bench().spread.against.is_none());
+}
+
+#[test]
+fn a_threshold_of_a_test_becomes_the_campaigns() {
+    let (place, mut trial) = one_granule();
+    trial.keys("}");
+    let Source::Test(number) = trial.bench().spread.source else {
+        panic!("no test is in hand: {}", trial.message());
+    };
+    let screened = trial.bench().tests.screened.clone().unwrap();
+    let test = screened.rulebook.tests[number].name.clone();
+    let before = screened.rulebook.fingerprint.clone();
+    assert!(trial.screen(120, 40).contains(&test));
+    trial.keys("Right Right D").types("warmer than usual").keys("Enter");
+    assert!(trial.message().contains("in the campaign's rulebook"), "{}", trial.message());
+    let campaign = Campaign::open(&place.path("campaign")).unwrap();
+    let (changes, problems) = campaign.rulebook_changes();
+    assert!(problems.is_empty());
+    assert_eq!((changes[0].test.as_str(), changes[0].person.as_str()), (test.as_str(), "ada"));
+    assert_eq!(changes[0].why.as_deref(), Some("warmer than usual"));
+    let after = trial.bench().tests.screened.clone().unwrap().rulebook.fingerprint.clone();
+    assert_eq!(after, changes[0].after, "the tests ran anew");
+    assert_ne!(after, before);
+    trial.leave();
+    let again = place.review(&["lowen_001.nc"]);
+    let kept = again.bench().tests.screened.clone().unwrap().rulebook.fingerprint.clone();
+    assert_eq!(kept, after, "and do so in the next session");
+}
