@@ -50,6 +50,12 @@ impl Spread {
         agree.then(|| Self { along: (0..lengths.len()).collect(), guessed: true })
     }
 
+    /// For a variable with one value, which is that of all footprints.
+    pub fn of_single(index: &FileIndex, variable: &Variable) -> Option<Self> {
+        let single = index.lengths(variable).iter().all(|length| *length == 1);
+        single.then(|| Self { along: Vec::new(), guessed: false })
+    }
+
     /// Whether there is one value for each footprint.
     pub fn is_full(&self, grid: &FootprintGrid) -> bool {
         self.along.len() == grid.lengths().len()

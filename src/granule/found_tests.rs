@@ -137,6 +137,23 @@ fn an_axis_by_first_value_and_step_is_found_and_told_as_a_guess() {
     }
 }
 
+#[test]
+fn a_stations_place_is_that_of_all_its_spectra() {
+    let number = |name: &str, units: &str| {
+        VariableDraft::new(name, ValueKind::F64, &[]).attribute("units", units)
+    };
+    let granule = opened(|writer| {
+        plain(writer);
+        put(writer, number("station_latitude", "degrees_north"), vec![51.5]);
+        put(writer, number("station_longitude", "degrees_east"), vec![12.0]);
+        put(writer, number("land", "1"), vec![1.0]);
+    });
+    assert_eq!(granule.geolocation().latitude.as_deref(), Some(&[51.5; 6][..]));
+    assert_eq!(granule.geolocation().longitude.as_deref(), Some(&[12.0; 6][..]));
+    assert_eq!(granule.geolocation().land_fraction, None);
+    assert!(has_problem(&granule, "`station_latitude` has one value, taken for all footprints"));
+}
+
 /// The plain granule with one more variable.
 fn with(draft: VariableDraft, values: Vec<f32>) -> Opened {
     opened(|writer| {

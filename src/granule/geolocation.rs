@@ -189,6 +189,7 @@ fn said(over: Over<'_>, name: &str) -> Result<Candidate, String> {
         .dimensions
         .spread(index, variable)
         .or_else(|| Spread::by_lengths(over.grid, &index.lengths(variable)))
+        .or_else(|| Spread::of_single(index, variable))
         .ok_or_else(|| format!("`{}` does not lie over the footprints", variable.path))?;
     // Said outright, so no guess.
     spread.guessed = false;
@@ -207,6 +208,20 @@ fn find(over: Over<'_>, field: &Field) -> Option<Candidate> {
             let order = (evidence, !spread.is_full(over.grid), spread.guessed, place);
             Some((order, Candidate { place, evidence: Some(evidence), spread }))
         });
+    let found = candidates.min_by_key(|(order, _)| *order).map(|(_, found)| found);
+    found.or_else(|| find_single(over, field))
+}
+
+/// One value for the whole file, as a station has it for its place.
+fn find_single(over: Over<'_>, field: &Field) -> Option<Candidate> {
+    let index = over.reader.index();
+    let fits = matches!(field.kind, Kind::Latitude | Kind::Longitude | Kind::Time);
+    let all = index.variables.iter().enumerate().filter(|_| fits);
+    let candidates = all.filter_map(|(place, variable)| {
+        let spread = Spread::of_single(index, variable).filter(|_| variable.kind.is_number())?;
+        let evidence = evidence(field, variable).filter(|_| !is_truth(variable))?;
+        Some(((evidence, place), Candidate { place, evidence: Some(evidence), spread }))
+    });
     candidates.min_by_key(|(order, _)| *order).map(|(_, found)| found)
 }
 
@@ -223,6 +238,10 @@ fn read_field(
     if evidence == Some(Evidence::Name) {
         let what = format!("`{}` is taken for {} by its name", path, field.name);
         problems.push(Problem::guess(&what, path, "a standard_name would say it"));
+    }
+    if spread.along.is_empty() {
+        let what = format!("`{path}` has one value, taken for all footprints");
+        problems.push(Problem::note(&what, path, ""));
     }
     if spread.guessed {
         let what = format!(

@@ -232,7 +232,10 @@ impl Names for GranuleNames<'_> {
         if let Some(friendly) = FRIENDLY_NAMES.iter().find(|friendly| friendly.name == name) {
             return match self.granule.geolocation().field(name) {
                 Some(values) => Ok(Values { values: values.to_vec(), unit: friendly.unit }),
-                None => Err(NameError::NotInFile(format!("{name} ({})", friendly.meaning))),
+                None => Err(NameError::NotInFile(format!(
+                    "{name} ({}); --with FILE may lend it",
+                    friendly.meaning
+                ))),
             };
         }
         if let Some(derived) = DERIVED_NAMES.iter().find(|derived| derived.name == name) {

@@ -41,6 +41,8 @@ pub fn problem_rows(app: &App) -> Vec<MessageRow> {
         let granule = bench.review.granule();
         rows.extend(granule.problems().iter().map(of_file));
         rows.extend(bench.review.cube().notes().iter().map(of_file));
+        let producer = &bench.review.producer().problems;
+        rows.extend(producer.iter().map(|text| warning(text.clone())));
         if let Some(record) = bench.record.open() {
             rows.extend(record.problems().iter().map(|text| warning(text.clone())));
             rows.extend(record.state().problems.iter().map(|text| warning(text.clone())));

@@ -16,6 +16,11 @@ pub fn tests_say(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
         return;
     };
     let Some(evidence) = screened.evidence(bench.cursor) else { return };
+    if bench.review.producer().rejects(bench.cursor) {
+        let words = "no test looks at what the producer rejects".to_owned();
+        rows.push(EvidenceRow::Words(words, Tone::Warning));
+        return;
+    }
     rows.extend(in_short(&evidence, screened));
     if let Some(words) = on_record(&bench.tests.on_record) {
         rows.push(EvidenceRow::Words(words, Tone::Warning));
