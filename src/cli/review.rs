@@ -112,10 +112,9 @@ mod on_screen {
         let hint = |action| app.keymap.hint(action);
         is_new.then(|| {
             format!(
-                "new here? {} shows the keys, 1 to 7 reach the panes, {} takes commands, {} leaves",
+                "first time? {} keys, 1-7 panes, {} commands",
                 hint(Action::Help),
-                hint(Action::Command),
-                hint(Action::Quit),
+                hint(Action::Command)
             )
         })
     }

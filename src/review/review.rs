@@ -110,6 +110,19 @@ impl Review {
         self.layers(&[text], cancel).swap_remove(0)
     }
 
+    /// Evaluates an expression over all of the granule; what it needs and has not been read yet is
+    /// read meanwhile.
+    ///
+    /// # Errors
+    /// As [`Self::layer`].
+    pub fn whole_layer(&self, text: &str, cancel: &Cancel) -> Result<Layer, String> {
+        let parsed = Expression::parse(text);
+        let parsed = parsed.map_err(|error| in_one_line(error.text(), error.mistake()))?;
+        let found = self.names().lend_all(cancel, |names| evaluate_all(&[&parsed], names));
+        let mut layers = found.map_err(|error| error.to_string())?;
+        layers.swap_remove(0).map_err(|error| in_one_line(error.text(), error.mistake()))
+    }
+
     /// The bands that an expression needs; none where the text is no expression.
     pub fn bands_of(&self, text: &str) -> Vec<usize> {
         let channels = self.channels_of_layer(text).into_iter();

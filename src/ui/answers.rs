@@ -21,6 +21,7 @@ use super::place::Place;
 use super::screening;
 use super::shown_layer::ShownLayer;
 use super::spreading;
+use super::strip;
 use super::tracing;
 use super::turning;
 use super::undoing;
@@ -41,6 +42,10 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Spectrum { request, found } => spectrum(app, request, found),
         Answer::Pinned { request, found } => pinned(app, request, found),
         Answer::Trace { request, found } => tracing::take(app, request, found),
+        Answer::Along { request, entry, found } => {
+            strip::take(app, request, entry, found);
+            Vec::new()
+        }
         Answer::Beside { request, found } => {
             if let Some(bench) = awaited(app, |bench| bench.awaited.beside == request) {
                 bench.awaited.beside = 0;
@@ -246,10 +251,12 @@ fn go_to_place(app: &mut App, place: &Place) -> Vec<Job> {
     bench.go_to(place);
     let layer = place.layer.clone().filter(|layer| !asked_for && *layer != bench.wanted);
     // Whoever has stood the panes otherwise by now keeps them so.
+    let mut jobs = Vec::new();
     if app.panes == Arrangement::default() {
         app.panes.restore(&place.panes, place.zoomed);
+        jobs.extend(strip::restore(app, place.strip_along));
     }
-    let mut jobs = looking::fill_pins(app);
+    jobs.extend(looking::fill_pins(app));
     jobs.extend(looking::spectrum(app));
     if let Some(layer) = layer {
         jobs.extend(looking::show_layer(app, &layer));
@@ -274,6 +281,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
             bench.layer.bands = layer.bands;
             bench.layer.fill(layer.values, layer.unit.label(), difference, layer.notes);
             tracing::mark_used(bench);
+            return strip::refresh(app);
         }
         Err(why) if bench.layer.text == bench.wanted => bench.layer.problem = Some(why),
         Err(why) => {

@@ -20,6 +20,7 @@ use super::ledger::LedgerLook;
 use super::line::History;
 use super::overlay::{Deed, Overlay};
 use super::panes::{Arrangement, Pane, ScreenLayout};
+use super::strip::Strip;
 
 /// What the review is given from outside; the same for its whole life.
 #[derive(Clone)]
@@ -92,6 +93,8 @@ pub struct App {
     pub left: Vec<Record>,
     /// How the panes stand.
     pub panes: Arrangement,
+    /// What the Strip lies along.
+    pub strip: Strip,
     /// What lies over the panes.
     pub overlay: Overlay,
     /// How one goes through the Ledger.
@@ -147,6 +150,7 @@ impl App {
             then: None,
             left: Vec::new(),
             panes: Arrangement::default(),
+            strip: Strip::default(),
             overlay: Overlay::None,
             ledger: LedgerLook::default(),
             evidence_scroll: 0,

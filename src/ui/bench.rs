@@ -88,8 +88,6 @@ pub struct Bench {
     pub signs: Signs,
     /// Whether cursor, box and pins are marked on the Field.
     pub marks: bool,
-    /// The dimension that the Strip lies along, by its number among those of the footprints.
-    pub strip_along: usize,
     /// How far the reading of the spectra has come.
     pub filling: Filling,
     /// What is started once the first picture is there.
@@ -150,7 +148,6 @@ impl Bench {
             geographic: false,
             signs: Signs::default(),
             marks: true,
-            strip_along: 0,
             filling: Filling::default(),
             behind_first_picture: Vec::new(),
             awaited: Awaited::default(),
@@ -308,10 +305,10 @@ impl Bench {
             quantity: self.look.quantity.name().to_owned(),
             field_zoom: self.field_zoom,
             geographic: self.geographic,
-            strip_along: self.strip_along,
             panes: panes.names(),
             zoomed: panes.is_zoomed(),
             pins: self.pins.iter().map(|pin| pin.footprint).collect(),
+            ..Place::default()
         }
     }
 
@@ -327,8 +324,6 @@ impl Bench {
         self.look.quantity = TraceQuantity::named(&place.quantity).unwrap_or_default();
         self.place_geographically(place.geographic);
         self.field_zoom = place.field_zoom.min(super::looking::MOST_FIELD_ZOOM);
-        let dimensions = self.review.granule().footprints().lengths().len();
-        self.strip_along = place.strip_along.min(dimensions.saturating_sub(1));
         let footprints = self.footprints();
         for footprint in place.pins.iter().filter(|one| **one < footprints) {
             self.pin(*footprint);

@@ -11,6 +11,7 @@ use crate::system::Cancel;
 use crate::tray::Standing;
 
 use super::bench::Quality;
+use super::panes::strip::Group;
 use super::place::Place;
 use super::selecting::{Found, Join};
 use super::spreading::Against;
@@ -163,6 +164,17 @@ pub enum Job {
         /// Ends it early.
         cancel: Cancel,
     },
+    /// Sum a layer up in granules, one answer for each.
+    Along {
+        /// The request.
+        request: u64,
+        /// The expression.
+        text: String,
+        /// The entries of the Tray with their files.
+        paths: Vec<(usize, PathBuf)>,
+        /// Ends it early.
+        cancel: Cancel,
+    },
     /// Keep a place.
     Keep {
         /// The granule by its content.
@@ -311,6 +323,15 @@ pub enum Answer {
         request: u64,
         /// What was found.
         found: Result<TraceFound, String>,
+    },
+    /// A layer was summed up in a granule.
+    Along {
+        /// The request.
+        request: u64,
+        /// The entry of the Tray.
+        entry: usize,
+        /// What it came to; nothing where no footprint has a value.
+        found: Result<Option<Group>, String>,
     },
     /// What stands beside a footprint's spectrum was read.
     Beside {

@@ -6,7 +6,6 @@ use super::app::App;
 use super::bench::{Bench, MOST_PINS, overtake};
 use super::jobs::Job;
 use super::keys::Action;
-use super::panes::Pane;
 use super::shown_layer::RangeChoice;
 use super::tracing;
 
@@ -144,18 +143,6 @@ pub fn field(app: &mut App, action: Action) -> Vec<Job> {
         Action::FieldIn => (bench.field_zoom + 1).min(MOST_FIELD_ZOOM),
         _ => bench.field_zoom.saturating_sub(1),
     };
-    Vec::new()
-}
-
-/// Turns the Strip to the next dimension of the footprints.
-pub fn strip_along(app: &mut App) -> Vec<Job> {
-    let Some(bench) = app.bench_mut() else { return no_granule(app) };
-    let names = bench.review.granule().footprints().names();
-    let next = (bench.strip_along + 1) % names.len().max(1);
-    let words = format!("Strip along {}", names.get(next).map_or("", String::as_str));
-    bench.strip_along = next;
-    app.panes.focus_on(Pane::Strip);
-    app.say(words);
     Vec::new()
 }
 

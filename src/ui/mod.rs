@@ -50,6 +50,7 @@ mod signing;
 mod signals;
 mod spectrum_window;
 mod spreading;
+mod strip;
 mod terminal;
 mod trace_look;
 mod tracing;

@@ -156,6 +156,9 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
         }
         (Button::Press | Button::Drag, Pane::Strip) => {
             app.panes.focus_on(Pane::Strip);
+            if let Some(entry) = views::strip_entry_under(app, mouse.column, mouse.row) {
+                app.tray_cursor = entry;
+            }
             let footprint = views::strip_footprint_under(app, mouse.column, mouse.row);
             footprint.map_or_else(Vec::new, |footprint| go(app, footprint))
         }

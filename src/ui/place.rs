@@ -22,7 +22,7 @@ pub struct Place {
     pub field_zoom: u8,
     /// The Field goes by latitude and longitude.
     pub geographic: bool,
-    /// The dimension that the Strip lies along, by its number.
+    /// What the Strip lies along: the number of a dimension, or beyond all numbers the granules.
     pub strip_along: usize,
     /// The panes that had the keys, the latest first, by their names.
     pub panes: Vec<String>,

@@ -33,6 +33,8 @@ enum Lane {
     Trace,
     /// What stands beside a spectrum, likewise.
     Beside,
+    /// Sums over granules, likewise; the older one is cancelled.
+    Along,
     /// Everything in its turn.
     InTurn,
     /// A thread of its own at once: may hang on a file until the reader's limit.
@@ -46,6 +48,7 @@ fn lane_of(job: &Job) -> Lane {
         Job::Spectrum { .. } => Lane::Spectrum,
         Job::Trace { .. } => Lane::Trace,
         Job::Beside { .. } => Lane::Beside,
+        Job::Along { .. } => Lane::Along,
         Job::Screen { .. } => Lane::Screen,
         Job::Standing { .. } => Lane::InTurn,
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {

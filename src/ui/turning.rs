@@ -7,6 +7,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
+use super::place::Place;
 use crate::tray::Standing;
 
 /// The first jobs: look what the ledgers say about all granules, and open the first that is not
@@ -178,7 +179,8 @@ fn put_away(app: &mut App) {
 pub fn keep_place(app: &App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return Vec::new() };
     let Some(record) = bench.record.open() else { return Vec::new() };
-    let (identity, place) = (record.identity().clone(), bench.place(&app.panes));
+    let identity = record.identity().clone();
+    let place = Place { strip_along: app.strip.number(), ..bench.place(&app.panes) };
     vec![Job::Keep { identity, place }]
 }
 

@@ -9,7 +9,7 @@ use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
     answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, spreading,
-    tracing, turning, typing,
+    strip, tracing, turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -71,7 +71,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::NextGranule | A::PreviousGranule | A::NextUnsigned | A::Open => {
             turning::turn(app, action)
         }
-        A::StripAlong => looking::strip_along(app),
+        A::StripAlong => strip::turn(app),
         A::NextLayer | A::PreviousLayer | A::ChannelLayer | A::CycleRange => {
             looking::layer(app, action)
         }
@@ -175,7 +175,7 @@ fn cancel(app: &mut App) -> Vec<Job> {
         turning::give_up_opening(app);
     } else if !dropped && app.panes.is_zoomed() {
         app.panes.zoom(false);
-    } else if !dropped && !screening::give_up(app) {
+    } else if !dropped && !screening::give_up(app) && !strip::give_up(app) {
         app.say("");
     }
     Vec::new()

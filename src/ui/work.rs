@@ -17,6 +17,7 @@ use super::jobs::{Answer, Job, TraceAsk, TraceFound};
 use super::place;
 use super::selecting::where_holds;
 use super::spreading::Against;
+use super::strip;
 use super::trace_look::{Beside, ReferenceFile};
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
@@ -94,6 +95,13 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         Job::Trace { request, review, ask } => {
             send(Answer::Trace { request: *request, found: trace(review, ask) });
         }
+        Job::Along { request, text, paths, cancel } => {
+            let open = |path: &PathBuf| {
+                Review::open(&outside.opening, path).map(Arc::new).map_err(in_words)
+            };
+            let tell = |entry, found| send(Answer::Along { request: *request, entry, found });
+            strip::sum_up(text, paths, cancel, open, tell);
+        }
         Job::Beside { request, review, footprint } => {
             send(Answer::Beside { request: *request, found: beside(review, *footprint) });
         }
@@ -133,7 +141,9 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Select { request, join, .. } => {
             Answer::Selected { request: *request, join: *join, found: Err(why()) }
         }
-        Job::Reread { .. } | Job::Keep { .. } | Job::Beside { .. } => return None,
+        Job::Reread { .. } | Job::Keep { .. } | Job::Beside { .. } | Job::Along { .. } => {
+            return None;
+        }
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
 }

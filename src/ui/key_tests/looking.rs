@@ -212,3 +212,30 @@ fn the_field_goes_by_latitude_and_longitude_too() {
     trial.keys("Right");
     assert_eq!(trial.bench().cursor, 1);
 }
+
+#[test]
+fn the_strip_lies_along_dimensions_and_then_along_granules() {
+    let names = ["lowen_001.nc", "pell_002.nc", "torn.nc"];
+    let place = Place::with(&names[..2]);
+    std::fs::write(place.path("torn.nc"), "no granule").unwrap();
+    let mut trial = place.review(&names);
+    trial.keys("s");
+    assert_eq!(trial.message(), "Strip along position");
+    trial.keys("s");
+    assert_eq!(trial.message(), "Strip along the 3 granules of the Tray");
+    let sums = |trial: &crate::ui::trial::Trial| -> Vec<Option<f64>> {
+        let found = trial.app.strip.granules.iter();
+        found.map(|one| one.clone()?.ok().map(|group| group.median.round())).collect()
+    };
+    // 30 black bodies from 250 to 279 K in both; the third is no granule.
+    assert_eq!(sums(&trial), [Some(265.0), Some(265.0), None]);
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains("Strip bt(900) along granules"), "{screen}");
+    trial.types(":layer bt(900) - 100").keys("Enter");
+    assert_eq!(sums(&trial), [Some(165.0), Some(165.0), None], "it follows the layer");
+    trial.keys("n");
+    assert_eq!(trial.granule(), "pell_002.nc");
+    assert!(trial.screen(120, 40).contains("along granules"), "it stays from granule to granule");
+    trial.keys("s");
+    assert_eq!(trial.message(), "Strip along line");
+}

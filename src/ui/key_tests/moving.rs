@@ -3,6 +3,7 @@
 use super::{ALL, append_byte, one_granule};
 use crate::ui::event::{Button, Event, Input, Mouse};
 use crate::ui::panes::Pane;
+use crate::ui::strip::Along;
 use crate::ui::trial::{POSITIONS, Place, Trial, write_granule};
 use crate::ui::views;
 
@@ -61,7 +62,7 @@ fn the_place_survives_leaving_and_turning_granules() {
         assert_eq!(bench.channel_wavenumber(), Some(1231.0));
         assert_eq!(bench.pins.len(), 1);
         assert!(!bench.window.is_whole());
-        assert_eq!(bench.strip_along, 1);
+        assert_eq!(trial.app.strip.along, Along::Dimension(1));
         assert_eq!(trial.app.focus(), Pane::Evidence);
         assert!(trial.app.panes.is_zoomed());
     };

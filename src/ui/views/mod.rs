@@ -23,7 +23,7 @@ pub use help::{help_groups, problem_rows};
 pub use overlay::draw_overlay;
 pub use spread::spread_place_under;
 pub use status::{hints, side_preview, status_facts};
-pub use strip::strip_footprint_under;
+pub use strip::{strip_entry_under, strip_footprint_under};
 pub use trace::wavenumber_under;
 pub use tray::tray_row_under;
 pub use under_cursor::under_cursor;
