@@ -84,6 +84,11 @@ fn record_attributes(source: &MaskSource, record: &Record<'_>) -> Vec<(&'static 
     if !producer.is_empty() {
         attributes.push(("rejected_by_producer", producer.join("; ")));
     }
+    if let Some(check) = record.spot_check() {
+        attributes.push(("spot_check", clean_text(&check.words())));
+        attributes.push(("spot_check_rulebook", clean_text(&check.rulebook)));
+        attributes.push(("spot_check_seed", check.seed.to_string()));
+    }
     attributes.push(("vocabulary", vocabulary(record)));
     attributes.push(("usable_rule", usable_rule(record)));
     attributes

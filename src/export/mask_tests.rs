@@ -7,7 +7,7 @@ use jiff::Timestamp;
 use super::*;
 use crate::flags::{
     Act, ChannelName, Decision, DecisionId, FlagExtension, FlagState, FootprintSet, Origin,
-    ReviewState, Scope, Vocabulary,
+    ReviewState, Scope, SpotCheck, Stratum, Vocabulary,
 };
 use crate::netcdf_files::{AttributeValue, FileReader, ReadLimits, ReaderProgram, Samples};
 
@@ -218,6 +218,29 @@ fn a_campaigns_own_flags_are_in_the_mask() {
     assert_eq!(mask.values("footprint_flag").get(1), f64::from(1 << 30));
     assert_eq!(mask.values("usable").get(1), 0.0);
     assert!(mask.global("vocabulary").ends_with("sun_glint"));
+}
+
+#[test]
+fn the_error_rate_of_the_plain_cases_goes_with_it() {
+    let check = SpotCheck {
+        rulebook: "built-in (0123)".to_owned(),
+        seed: 7,
+        strata: vec![Stratum {
+            flagged: false,
+            plain: 900,
+            right: FootprintSet::range(0..20),
+            wrong: FootprintSet::empty(),
+            untold: FootprintSet::empty(),
+        }],
+    };
+    let mask =
+        Mask::of(&source(), &decisions(vec![Act::SpotCheck(check)]), &Vocabulary::released());
+    assert_eq!(
+        mask.global("spot_check"),
+        "no flag: 0 of 20 wrong: 0.0 %, with 95 % confidence 0.0 % to 16.8 %"
+    );
+    assert_eq!(mask.global("spot_check_rulebook"), "built-in (0123)");
+    assert_eq!(mask.global("spot_check_seed"), "7");
 }
 
 #[test]

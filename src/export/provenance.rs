@@ -4,7 +4,9 @@ use std::collections::BTreeSet;
 
 use jiff::Timestamp;
 
-use crate::flags::{Act, Decision, FlagState, GranuleState, Origin, PRODUCER, Vocabulary};
+use crate::flags::{
+    Act, Decision, FlagState, GranuleState, Origin, PRODUCER, SpotCheck, Vocabulary,
+};
 use crate::system::clean_text;
 
 /// Who exports, when, with what: passed in, so that the same decisions give the same bytes.
@@ -64,6 +66,19 @@ impl Record<'_> {
     pub fn span(&self) -> Option<(Timestamp, Timestamp)> {
         let times = || self.decisions.iter().map(|decision| decision.at);
         Some((times().min()?, times().max()?))
+    }
+
+    /// The latest spot check that stands: how often the tests' plain verdicts were judged wrong.
+    pub fn spot_check(&self) -> Option<&SpotCheck> {
+        let standing = crate::flags::standing(self.decisions);
+        let checks = self.decisions.iter().zip(standing).filter_map(|(decision, stands)| {
+            match &decision.act {
+                Act::SpotCheck(check) if stands && decision.by_person() => Some((decision, check)),
+                _ => None,
+            }
+        });
+        let last = checks.max_by(|(one, _), (other, _)| one.order().cmp(&other.order()));
+        last.map(|(_, check)| check)
     }
 
     /// Who answers for the granule as it stands, if someone does.

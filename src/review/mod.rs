@@ -19,6 +19,7 @@ mod tests_decide;
 mod review;
 mod spectra_decide;
 mod spectrum;
+mod spot_sample;
 mod suggestions;
 mod verbs;
 
@@ -33,5 +34,6 @@ pub use review::Review;
 pub use rulebook_of::{NoRulebook, rulebook_of};
 pub use rulings::{Ruled, has_suggestion};
 pub use spectrum::{BandSpectrum, Spectrum};
+pub use spot_sample::{Judgement, SpotSample, draw_sample};
 pub use tests_decide::{OnRecord, Recorded, test_acts};
 pub use verbs::Refusal;

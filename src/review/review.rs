@@ -90,6 +90,11 @@ impl Review {
         expression.map_or_else(|_| Vec::new(), |one| channels_needed(&[&one], &self.names()))
     }
 
+    /// Whether a layer asks what screening tests said.
+    pub fn asks_tests(text: &str) -> bool {
+        Expression::parse(text).is_ok_and(|expression| expression.asks_tests())
+    }
+
     /// Runs the tests of a rulebook over what has been read so far.
     pub fn screen_so_far(&self, rulebook: &Rulebook) -> Screened {
         screen(rulebook, &self.names_for_tests())

@@ -4,7 +4,8 @@ use jiff::Timestamp;
 
 use super::record::Record;
 use crate::flags::{
-    Act, Decision, DecisionId, FootprintSet, GranuleState, Scope, redo_target, undo_target,
+    Act, Decision, DecisionId, FootprintSet, GranuleState, Scope, SpotCheck, redo_target,
+    undo_target,
 };
 
 /// Why something was not decided.
@@ -169,6 +170,11 @@ impl Record {
         );
         self.decide(Act::SignOff { rest_assessed, summary }, None, now);
         Ok(())
+    }
+
+    /// Keeps what a spot check showed.
+    pub fn spot_check(&mut self, check: SpotCheck, now: Timestamp) {
+        self.decide(Act::SpotCheck(check), None, now);
     }
 
     /// Sets the granule aside.

@@ -23,6 +23,7 @@ use super::selecting::{Selecting, Shape};
 use super::shown_layer::ShownLayer;
 use super::side::Side;
 use super::spectrum_window::SpectrumWindow;
+use super::spot::Spot;
 use super::spreading::Spread;
 use super::trace_look::{TraceLook, TraceQuantity};
 
@@ -50,6 +51,8 @@ pub struct Bench {
     pub selecting: Selecting,
     /// What the Spread is about.
     pub spread: Spread,
+    /// A spot check under way.
+    pub spot: Option<Spot>,
     /// What is left in doubt.
     pub doubt: Doubt,
     /// The layer on show.
@@ -130,6 +133,7 @@ impl Bench {
             cursor: 0,
             selecting: Selecting::default(),
             spread: Spread::default(),
+            spot: None,
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),
             other_layer: None,

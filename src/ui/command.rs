@@ -36,6 +36,8 @@ pub enum Command {
     Aside(String),
     /// A remark on the selection.
     Comment(String),
+    /// Draw a sample for a spot check, with so many footprints with flag and without.
+    Spot(usize),
     /// Export the mask into a folder, or where the campaign keeps its exports.
     Export(Option<String>),
 }
@@ -121,6 +123,12 @@ const WORDED: &[Worded] = &[
         words: "TEXT",
         help: "write down a remark on the selection",
         parse: |words| sentence(words, "the remark").map(Command::Comment),
+    },
+    Worded {
+        name: "spot",
+        words: "COUNT",
+        help: "judge a blind sample of so many with and without flag",
+        parse: spot,
     },
     Worded { name: "export", words: "[FOLDER]", help: "export the flag mask", parse: export },
 ];
@@ -210,6 +218,13 @@ fn planck(words: &str) -> Result<Command, String> {
     match kelvins.iter().all(|kelvin| (1.0..=10_000.0).contains(kelvin)) {
         true => Ok(Command::Planck(kelvins)),
         false => Err("temperatures are in K, from 1 to 10000".to_owned()),
+    }
+}
+
+fn spot(words: &str) -> Result<Command, String> {
+    match words.parse() {
+        Ok(count @ 1..=1000) => Ok(Command::Spot(count)),
+        _ => Err("a number from 1 to 1000 is missing, as in spot 20".to_owned()),
     }
 }
 

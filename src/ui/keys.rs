@@ -55,6 +55,7 @@ pub enum Action {
     Withdraw,
     Assess,
     RunTests,
+    SpotCheck,
     NextCase,
     PreviousCase,
     Accept,
@@ -276,6 +277,7 @@ pub const BINDINGS: &[Binding] = &[
     row(&[key(Code::Backspace)], Action::PreviousCase, "doubt-back", Deciding, "the case before"),
     row(&[letter('y')], Action::Accept, "accept", Deciding, "accept what the tests suggest"),
     row(&[letter('R')], Action::Overrule, "overrule", Deciding, "overrule what they suggest"),
+    row(&[letter('@')], Action::SpotCheck, "spot-check", Deciding, "judge a blind sample"),
     row(&[letter('T')], Action::RunTests, "screen", Deciding, "run the tests anew"),
     row(&[letter('u')], Action::Undo, "undo", Deciding, "undo the last decision"),
     row(&[letter('r'), Key::control('r')], Action::Redo, "redo", Deciding, "redo"),
@@ -303,6 +305,11 @@ pub const BINDINGS: &[Binding] = &[
     row(&[key(Code::Esc)], Action::Cancel, "cancel", Program, "let go: shape, selection, prompt"),
     row(&[letter('q'), Key::control('c')], Action::Quit, "quit", Program, "leave"),
 ];
+
+/// Where the help lists an action.
+pub fn group_of(action: Action) -> Option<Group> {
+    BINDINGS.iter().find(|binding| binding.action == action).map(|binding| binding.group)
+}
 
 /// The action of a command name.
 pub fn action_named(name: &str) -> Option<Action> {

@@ -22,7 +22,7 @@ const PAGE: usize = 10;
 
 /// The decisions on show, by their place in the record, the newest first.
 pub fn rows_on_show(app: &App) -> Vec<usize> {
-    let Some(bench) = app.bench() else { return Vec::new() };
+    let Some(bench) = app.bench().filter(|bench| !bench.is_blind()) else { return Vec::new() };
     let Some(record) = bench.record.open() else { return Vec::new() };
     let about = |decision: &Decision| {
         // What was undone is about what the undo takes back.

@@ -2,11 +2,13 @@
 
 use std::sync::Arc;
 
+use crate::review::Review;
+
 use super::app::App;
 use super::bench::{Bench, MOST_PINS, overtake};
 use super::jobs::Job;
 use super::keys::Action;
-use super::shown_layer::RangeChoice;
+use super::shown_layer::{RangeChoice, ShownLayer};
 use super::tracing;
 
 /// How many times the Field can be zoomed in; each time shows half the width and height.
@@ -58,6 +60,19 @@ pub fn show_layer(app: &mut App, text: &str) -> Vec<Job> {
         Some(bench) => bench.wanted = text.trim().to_owned(),
         None => return no_granule(app),
     }
+    refresh_layer(app)
+}
+
+/// Takes a layer that tells what the tests said off the Field, for a layer that does not.
+pub fn hide_judgements(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    bench.other_layer = None;
+    if !Review::asks_tests(&bench.wanted) && !Review::asks_tests(&bench.layer.text) {
+        return Vec::new();
+    }
+    let plain = bench.suggested.iter().find(|text| !Review::asks_tests(text)).cloned();
+    bench.wanted = plain.unwrap_or_default();
+    bench.layer = ShownLayer::waiting(&bench.wanted);
     refresh_layer(app)
 }
 

@@ -51,6 +51,7 @@ mod signals;
 mod spectrum_window;
 mod spreading;
 mod strip;
+mod spot;
 mod terminal;
 mod trace_look;
 mod tracing;

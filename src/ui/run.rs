@@ -57,6 +57,10 @@ pub fn run(mut app: App) -> io::Result<Ended> {
         while let Ok(event) = events.try_recv() {
             handle(&mut app, &mut screen, &mut runner, event);
         }
+        // Under a stream of keys no pause comes in which the writer would be asked.
+        if app.pending() > 0 {
+            handle(&mut app, &mut screen, &mut runner, Event::LedgerMoved);
+        }
     }
     drop(screen);
     Ok(finish(app))

@@ -224,6 +224,7 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
             record.set_aside(&why, now).map(|()| "set aside".to_owned())
         }),
         Command::Comment(text) => to_selection(app, Deed::Comment(text)),
+        Command::Spot(count) => super::spot::begin(app, count),
         Command::Export(folder) => deciding::export(app, folder),
     }
 }

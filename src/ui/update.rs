@@ -8,8 +8,8 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, spreading,
-    strip, tracing, turning, typing,
+    answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, spot,
+    spreading, strip, tracing, turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -50,6 +50,9 @@ fn press(app: &mut App, key: Key) -> Vec<Job> {
     let always = matches!(action, Some(Action::Suspend | Action::Redraw));
     if !always && !matches!(app.overlay, Overlay::None) {
         return prompts::press(app, key);
+    }
+    if !always && let Some(jobs) = spot::press(app, key) {
+        return jobs;
     }
     match action {
         Some(action) => act(app, action),
@@ -96,6 +99,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::Adopt => spreading::ask_to_adopt(app),
         A::Box | A::Polygon | A::Join | A::Invert | A::Reselect => picking::pick(app, action),
         A::SignOff | A::Reopen => deciding::decide(app, action),
+        A::SpotCheck => spot::begin(app, spot::USUAL),
         A::RunTests => screening::start(app),
         A::NextCase | A::PreviousCase | A::Accept | A::Overrule => doubting::doubt(app, action),
         A::Export => deciding::export(app, None),

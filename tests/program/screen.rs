@@ -220,3 +220,46 @@ fn the_samples_are_screened_with_the_built_in_rulebook() {
         assert!(file["flagged"]["cloudy"].as_u64().unwrap() > 0, "{file}");
     }
 }
+
+/// A ledger as another session of a person leaves it, beside those of the tests.
+fn person_says(folder: &Path, line: &str) {
+    let of_tests = ledgers(folder).into_keys().next().unwrap();
+    let text = std::fs::read_to_string(&of_tests).unwrap();
+    let mut header: Value = serde_json::from_str(text.lines().next().unwrap()).unwrap();
+    header["writer"] = "bo-desk-1".into();
+    header["author"]["person"] = "bo".into();
+    std::fs::write(of_tests.with_file_name("bo-desk-1.jsonl"), format!("{header}\n{line}\n"))
+        .unwrap();
+}
+
+/// What a person accepted or overruled on the screen survives every later run of the tests.
+#[test]
+fn a_persons_word_on_a_suggestion_survives_a_rescreen() {
+    let folder = tempfile::tempdir().unwrap();
+    plain(folder.path());
+    output(folder.path(), &SCREEN, 0);
+    let Samples::I32(before) = mask(folder.path(), "footprint_flag") else { panic!() };
+    let cloudy = before.iter().position(|flags| flags & 1 != 0).expect("a cloudy one");
+    let clear = before.iter().position(|flags| flags & 1 == 0).expect("a clear one");
+    let word = |sequence: u32, ruling: &str, given: String, withdrawn: String, at: usize| {
+        format!(
+            "{{\"sequence\":{sequence},\"at\":\"2026-03-01T13:00:0{sequence}Z\",\"act\":\"judge\",\
+             \"ruling\":\"{ruling}\",\"rulebook\":\"plain (0)\",\"given\":[{given}],\
+             \"withdrawn\":[{withdrawn}],\"footprints\":[[{at},1]]}}"
+        )
+    };
+    let part = |at: usize| format!("{{\"flag\":\"cloudy\",\"footprints\":[[{at},1]]}}");
+    let overruled = word(1, "overruled", String::new(), part(cloudy), cloudy);
+    let accepted = word(2, "accepted", part(clear), String::new(), clear);
+    person_says(folder.path(), &format!("{overruled}\n{accepted}"));
+    // The tests change their mind both ways, and nothing of it reaches these two.
+    for threshold in ["100", "400", "220.1"] {
+        let rules = RULES.replace("220.1", threshold);
+        std::fs::write(folder.path().join("rules.toml"), rules).unwrap();
+        output(folder.path(), &SCREEN, 0);
+        let Samples::I32(flags) = mask(folder.path(), "footprint_flag") else { panic!() };
+        assert_eq!((flags[cloudy] & 1, flags[clear] & 1), (0, 1), "threshold {threshold}");
+        let Samples::I8(states) = mask(folder.path(), "review_state") else { panic!() };
+        assert_eq!((states[cloudy], states[clear]), (2, 2));
+    }
+}

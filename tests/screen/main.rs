@@ -6,6 +6,7 @@ mod hanging_granule;
 
 mod budget;
 mod care;
+mod killed;
 mod main_job;
 mod terminal;
 

@@ -165,6 +165,12 @@ impl Session {
         self.child.process_id().unwrap()
     }
 
+    /// Kills the program at once, as the system does when memory runs out.
+    pub fn kill(&mut self) {
+        self.child.kill().unwrap();
+        self.child.wait().unwrap();
+    }
+
     /// Waits for the end of the program.
     pub fn end(&mut self) -> ExitStatus {
         let start = Instant::now();

@@ -32,6 +32,13 @@ impl Expression {
         &self.tree
     }
 
+    /// Whether it asks what screening tests said.
+    pub fn asks_tests(&self) -> bool {
+        let mut asks = false;
+        self.tree().visit(&mut |node| asks |= matches!(node.kind, Kind::Judged(..)));
+        asks
+    }
+
     /// The bare names in it, in the order of the text, each once.
     pub fn names(&self) -> Vec<&str> {
         let mut names = Vec::new();

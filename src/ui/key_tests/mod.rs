@@ -6,6 +6,7 @@ mod looking;
 mod moving;
 mod program;
 mod screening;
+mod spot;
 mod selecting;
 mod spreading;
 mod turning;

@@ -35,9 +35,14 @@ pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
 pub fn evidence_rows(app: &App) -> Vec<EvidenceRow> {
     let Some(bench) = app.bench() else { return Vec::new() };
     let mut rows = Vec::new();
-    decided(bench, &mut rows);
-    section(&mut rows, "Tests");
-    super::tests_say::tests_say(bench, &mut rows);
+    if bench.is_blind() {
+        let words = "what was decided and what the tests say is hidden during the spot check";
+        rows.push(EvidenceRow::Words(words.to_owned(), Tone::Warning));
+    } else {
+        decided(bench, &mut rows);
+        section(&mut rows, "Tests");
+        super::tests_say::tests_say(bench, &mut rows);
+    }
     indices(bench, &mut rows);
     windows(bench, &mut rows);
     quality(bench, &mut rows);

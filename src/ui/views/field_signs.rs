@@ -11,6 +11,7 @@ const LEAST_DOUBT: u32 = 2;
 /// One bit mask for each footprint; empty where there is nothing to show.
 pub fn masks(app: &App, bench: &Bench) -> Vec<u32> {
     match bench.signs {
+        _ if bench.is_blind() => Vec::new(),
         Signs::Flags => standing(bench),
         Signs::Tests => by_tests(app, bench),
         Signs::Doubt => doubts(bench),

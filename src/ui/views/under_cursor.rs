@@ -11,8 +11,8 @@ pub fn under_cursor(app: &App) -> String {
         Some(bench.position_words(bench.cursor)),
         place(bench),
         surface(bench),
-        flags(app, bench),
-        doubt(bench),
+        (!bench.is_blind()).then(|| flags(app, bench)).flatten(),
+        (!bench.is_blind()).then(|| doubt(bench)).flatten(),
     ];
     let parts: Vec<String> = parts.into_iter().flatten().collect();
     parts.join(" · ")
