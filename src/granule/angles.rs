@@ -1,5 +1,7 @@
 //! Angles that a file lacks, worked out from time, place and view; and the sense of those it has.
 
+use rayon::prelude::*;
+
 use super::footprints::FootprintGrid;
 use super::geolocation::{Geolocation, GeolocationSource, Origin};
 use super::globe::{bearing, sun_angles};
@@ -19,62 +21,67 @@ const SAME_WAY: f64 = 45.0;
 const SLANTED: f64 = 15.0;
 const NADIR: f64 = 5.0;
 
+/// Footprints and scan lines that are looked at to check angles: a sense is plain from few.
+const MOST_CHECKED: usize = 2000;
+
 /// Adds the sun's angles where the file has none and time and place are known; checks those that it
 /// has; turns azimuths that are meant the other way round.
 pub fn complete(geolocation: &mut Geolocation, grid: &FootprintGrid, problems: &mut Vec<Problem>) {
-    if let Some(sun) = Sun::of(geolocation) {
-        sun.check(geolocation, problems);
-        sun.add(geolocation, problems);
-    }
-    if let Some(towards_nadir) = towards_nadir(geolocation, grid) {
-        check_view(geolocation, &towards_nadir, problems);
-        add_view(geolocation, towards_nadir, problems);
+    check_sun(geolocation, problems);
+    add_sun(geolocation, problems);
+    check_view(geolocation, grid, problems);
+    add_view(geolocation, grid, problems);
+}
+
+/// Every so many of `count`, so that few enough are checked.
+fn stride(count: usize) -> usize {
+    count.div_ceil(MOST_CHECKED).max(1)
+}
+
+/// Zenith angle and azimuth of the sun at a footprint by time and place, degrees.
+fn sun_at(geolocation: &Geolocation, footprint: usize) -> Option<(f64, f64)> {
+    let value = |field: &Option<Vec<f64>>| field.as_ref()?.get(footprint).copied();
+    let (latitude, longitude) = (value(&geolocation.latitude)?, value(&geolocation.longitude)?);
+    Some(sun_angles(value(&geolocation.time)?, latitude, longitude))
+}
+
+fn check_sun(geolocation: &mut Geolocation, problems: &mut Vec<Problem>) {
+    let count = geolocation.time.as_ref().map_or(0, Vec::len);
+    let apart = |own: &Option<Vec<f64>>, of: &dyn Fn(f64, (f64, f64)) -> f64| {
+        let own = own.as_ref()?;
+        let checked = (0..count.min(own.len())).step_by(stride(count));
+        median(checked.filter_map(|at| Some(of(own[at], sun_at(geolocation, at)?))))
+    };
+    let zenith = apart(&geolocation.solar_zenith, &|own, (zenith, _)| (own - zenith).abs());
+    // Near the zenith and the nadir azimuths mean little.
+    let azimuth = apart(&geolocation.solar_azimuth, &|own, (zenith, azimuth)| {
+        if (10.0..=170.0).contains(&zenith) { between(own, azimuth) } else { f64::NAN }
+    });
+    note_astray(zenith, "solar_zenith", problems);
+    match (azimuth, &mut geolocation.solar_azimuth) {
+        (Some(degrees), Some(azimuth)) if degrees > OTHER_WAY => {
+            turn(azimuth);
+            note_turned("solar_azimuth", "the sun", problems);
+        }
+        (degrees, _) => note_astray(degrees, "solar_azimuth", problems),
     }
 }
 
-/// Where the sun stands by time and place, degrees.
-struct Sun {
-    zenith: Vec<f64>,
-    azimuth: Vec<f64>,
-}
-
-impl Sun {
-    fn of(geolocation: &Geolocation) -> Option<Self> {
-        let times = geolocation.time.as_ref()?.iter();
-        let places = geolocation.latitude.as_ref()?.iter().zip(geolocation.longitude.as_ref()?);
-        let angles = times.zip(places).map(|(time, (lat, lon))| sun_angles(*time, *lat, *lon));
-        let (zenith, azimuth) = angles.unzip();
-        Some(Self { zenith, azimuth })
+fn add_sun(geolocation: &mut Geolocation, problems: &mut Vec<Problem>) {
+    let lacking = ["solar_zenith", "solar_azimuth"];
+    let lacking = lacking.map(|field| geolocation.field(field).is_none());
+    let count = geolocation.time.as_ref().map_or(0, Vec::len);
+    if lacking == [false, false] || sun_at(geolocation, 0).is_none() {
+        return;
     }
-
-    fn check(&self, geolocation: &mut Geolocation, problems: &mut Vec<Problem>) {
-        if let Some(zenith) = &geolocation.solar_zenith {
-            let apart = zenith.iter().zip(&self.zenith).map(|(own, sun)| own - sun);
-            note_astray(median(apart.map(f64::abs)), "solar_zenith", problems);
-        }
-        let Some(azimuth) = &mut geolocation.solar_azimuth else { return };
-        // Near the zenith, and around the poles of the sky, azimuths mean little.
-        let telling = |zenith: f64| (10.0..=170.0).contains(&zenith);
-        let apart = azimuth.iter().zip(&self.azimuth).zip(&self.zenith);
-        let apart = apart.filter(|(_, zenith)| telling(**zenith));
-        let apart = median(apart.map(|((own, sun), _)| between(*own, *sun)));
-        match apart {
-            Some(degrees) if degrees > OTHER_WAY => {
-                turn(azimuth);
-                note_turned("solar_azimuth", "the sun", problems);
-            }
-            apart => note_astray(apart, "solar_azimuth", problems),
-        }
-    }
-
-    fn add(self, geolocation: &mut Geolocation, problems: &mut Vec<Problem>) {
-        for (field, values) in [("solar_zenith", self.zenith), ("solar_azimuth", self.azimuth)] {
-            if geolocation.field(field).is_none() {
-                add(geolocation, field, values, "time, lat, lon");
-                let what = format!("`{field}` is computed from time, latitude and longitude");
-                problems.push(Problem::note(&what, "", "good to 0.02 degrees"));
-            }
-        }
+    let none = (f64::NAN, f64::NAN);
+    let angles = (0..count).into_par_iter().map(|at| sun_at(geolocation, at).unwrap_or(none));
+    let (zenith, azimuth): (Vec<f64>, Vec<f64>) = angles.unzip();
+    let found = [("solar_zenith", zenith), ("solar_azimuth", azimuth)];
+    for ((field, values), _) in found.into_iter().zip(lacking).filter(|(_, lacking)| *lacking) {
+        add(geolocation, field, values, "time, lat, lon");
+        let what = format!("`{field}` is computed from time, latitude and longitude");
+        problems.push(Problem::note(&what, "", "good to 0.02 degrees"));
     }
 }
 
@@ -124,38 +131,46 @@ fn median(values: impl Iterator<Item = f64>) -> Option<f64> {
     Some(*values.select_nth_unstable_by(middle, f64::total_cmp).1)
 }
 
-/// For each footprint the direction (degrees) of the place in its scan line that is looked at from
-/// right above, over which the sensor stands. Missing for lines that do not pass near the nadir.
-/// Nothing for a granule without scan lines.
-fn towards_nadir(geolocation: &Geolocation, grid: &FootprintGrid) -> Option<Vec<f64>> {
+/// For each footprint of a scan line the direction (degrees) of the place in it that is looked at from
+/// right above, over which the sensor stands. Nothing for a line that does not pass near the nadir, and
+/// for a granule without scan lines.
+fn towards_nadir(geolocation: &Geolocation, grid: &FootprintGrid, line: usize) -> Option<Vec<f64>> {
     let zenith = geolocation.view_zenith.as_ref()?;
     let (latitudes, longitudes) = (geolocation.latitude.as_ref()?, geolocation.longitude.as_ref()?);
     if grid.lengths().len() < 2 {
         return None;
     }
+    let row = grid.row_length();
+    let footprints = line * row..(line + 1) * row;
     let place = |footprint: usize| (latitudes[footprint], longitudes[footprint]);
-    let row = grid.row_length().max(1);
-    let mut directions = Vec::with_capacity(zenith.len());
-    for (line, angles) in zenith.chunks(row).enumerate() {
-        let known = angles.iter().enumerate().filter(|(_, angle)| angle.is_finite());
-        let lowest = known.min_by(|one, other| one.1.abs().total_cmp(&other.1.abs()));
-        let nadir = lowest.filter(|(_, angle)| angle.abs() <= NADIR);
-        let nadir = nadir.map(|(position, _)| place(line * row + position));
-        directions.extend((0..angles.len()).map(|position| {
-            nadir.map_or(f64::NAN, |nadir| bearing(place(line * row + position), nadir))
-        }));
-    }
-    Some(directions)
+    let known = footprints.clone().filter(|at| zenith[*at].abs() <= NADIR);
+    let nadir = known.min_by(|one, other| zenith[*one].abs().total_cmp(&zenith[*other].abs()))?;
+    Some(footprints.map(|footprint| bearing(place(footprint), place(nadir))).collect())
 }
 
-fn check_view(geolocation: &mut Geolocation, towards: &[f64], problems: &mut Vec<Problem>) {
-    let Some(zenith) = &geolocation.view_zenith else { return };
-    let Some(azimuth) = &mut geolocation.view_azimuth else { return };
-    let apart = azimuth.iter().zip(towards).zip(zenith);
-    let apart = apart.filter(|(_, zenith)| zenith.abs() >= SLANTED);
-    match median(apart.map(|((own, nadir), _)| between(*own, *nadir))) {
+fn lines(grid: &FootprintGrid) -> usize {
+    grid.lengths().first().copied().unwrap_or(0)
+}
+
+fn check_view(geolocation: &mut Geolocation, grid: &FootprintGrid, problems: &mut Vec<Problem>) {
+    let (Some(zenith), Some(azimuth)) = (&geolocation.view_zenith, &geolocation.view_azimuth)
+    else {
+        return;
+    };
+    let row = grid.row_length().max(1);
+    // At least every tenth line or so, however long the lines are.
+    let every = stride(grid.count()).min(lines(grid).div_ceil(10).max(1));
+    let checked = (0..lines(grid)).step_by(every);
+    let apart = checked.flat_map(|line| {
+        let towards = towards_nadir(geolocation, grid, line).unwrap_or_default();
+        let apart = towards.into_iter().zip(line * row..).map(|(nadir, at)| {
+            if zenith[at].abs() >= SLANTED { between(azimuth[at], nadir) } else { f64::NAN }
+        });
+        apart.collect::<Vec<f64>>()
+    });
+    match median(apart) {
         Some(degrees) if degrees > OTHER_WAY => {
-            turn(azimuth);
+            geolocation.view_azimuth.iter_mut().for_each(|azimuth| turn(azimuth));
             note_turned("view_azimuth", "the sensor", problems);
         }
         Some(degrees) if degrees > SAME_WAY => {
@@ -169,17 +184,27 @@ fn check_view(geolocation: &mut Geolocation, towards: &[f64], problems: &mut Vec
     }
 }
 
-fn add_view(geolocation: &mut Geolocation, towards: Vec<f64>, problems: &mut Vec<Problem>) {
-    if geolocation.view_azimuth.is_some() || towards.iter().all(|direction| direction.is_nan()) {
+fn add_view(geolocation: &mut Geolocation, grid: &FootprintGrid, problems: &mut Vec<Problem>) {
+    let Some(zenith) = geolocation.view_zenith.as_ref() else { return };
+    if geolocation.view_azimuth.is_some() {
+        return;
+    }
+    let row = grid.row_length();
+    let line = |line: usize| {
+        let towards = towards_nadir(geolocation, grid, line);
+        towards.unwrap_or_else(|| vec![f64::NAN; row])
+    };
+    let towards: Vec<f64> = (0..lines(grid)).into_par_iter().flat_map_iter(line).collect();
+    if towards.iter().all(|direction| direction.is_nan()) {
         return;
     }
     // Right below the sensor every direction is as good: the glint angle does not depend on it.
-    let nadir = geolocation.view_zenith.iter().flatten().map(|zenith| zenith.abs() <= NADIR);
-    let known = |(direction, nadir): (f64, bool)| match direction.is_nan() && nadir {
+    let known = |(direction, zenith): (f64, &f64)| match direction.is_nan() && zenith.abs() <= NADIR
+    {
         true => 0.0,
         false => direction,
     };
-    let azimuth = towards.into_iter().zip(nadir).map(known).collect();
+    let azimuth = towards.into_iter().zip(zenith).map(known).collect();
     add(geolocation, "view_azimuth", azimuth, "lat, lon, view_zenith");
     let what = "`view_azimuth` is computed as the direction of the nadir in the scan line";
     problems.push(Problem::guess(what, "", "good to some degrees for a scan across the track"));

@@ -126,8 +126,12 @@ impl<'g> GranuleNames<'g> {
     fn find_neighbours(&self) -> Neighbours {
         let lengths = self.granule.footprints().lengths();
         let fields = self.granule.geolocation();
+        // A station's spectra lie beside each other in time only.
+        let stands_still = |values: &[f64]| values.windows(2).all(|pair| pair[0] == pair[1]);
         match (&fields.latitude, &fields.longitude) {
-            (Some(latitudes), Some(longitudes)) => {
+            (Some(latitudes), Some(longitudes))
+                if !(stands_still(latitudes) && stands_still(longitudes)) =>
+            {
                 Neighbours::by_ground(lengths, latitudes, longitudes)
             }
             _ => Neighbours::by_array(lengths),
