@@ -11,6 +11,7 @@ mod describe;
 mod exit;
 mod export;
 mod footprint_at;
+mod heights;
 mod inputs;
 mod instrument;
 mod manual;

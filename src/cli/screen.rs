@@ -10,12 +10,12 @@ use serde_json::{Value, json};
 
 use super::exit::UsageError;
 use super::footprint_at::{footprint, indices};
+use super::heights::{CloudTop, Heights, cloud_top, cloud_top_words};
 use super::inputs::{Inputs, Reading};
 use super::instrument::{instrument, instrument_words, write_spectrum_evidence};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
 use crate::flags::{Author, Campaign, CampaignError, QualityMap};
-use crate::granule::Opening;
 use crate::review::{Producer, Record, Recorded, Review, rulebook_of};
 use crate::screening::{Evidence, Rulebook, Screened, TestEvidence, Verdict};
 use crate::system::{Cancel, clean_text};
@@ -36,6 +36,8 @@ pub struct Arguments {
     inputs: Inputs,
     #[command(flatten)]
     reading: Reading,
+    #[command(flatten)]
+    heights: Heights,
     /// The rulebook; where none is named, the campaign's own (rulebook.toml in its folder) or the
     /// built-in one.
     #[arg(long, value_name = "FILE")]
@@ -75,18 +77,24 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let rulebook = rulebook(&arguments)?;
     let quality = quality(&arguments)?;
     let opening = arguments.reading.opening()?;
+    let heights = arguments.heights.method()?;
     if let Some(position) = &arguments.explain {
         let position = indices("--explain", position)?;
         let [file] = &files[..] else {
             return Err(UsageError("--explain takes one file".into()).into());
         };
-        return explain(&opening, file, &rulebook, &quality, &position, arguments.json);
+        let review = Review::open(&opening, file)?.heeding(&quality).taking(heights);
+        return explain(&review, file, &rulebook, &position, arguments.json);
     }
     let desk = if arguments.dry_run { None } else { Some(desk(&arguments, &rulebook)?) };
     let mut failed = 0;
     let mut entries = Vec::new();
     for file in &files {
-        let outcome = one_file(&opening, file, &rulebook, &quality, desk.as_ref());
+        let review = Review::open(&opening, file)
+            .map(|review| review.heeding(&quality).taking(heights.clone()));
+        let outcome = review
+            .map_err(anyhow::Error::from)
+            .and_then(|review| one_file(&review, &rulebook, desk.as_ref()));
         failed += usize::from(outcome.is_err());
         tell(file, &outcome, arguments.json)?;
         if arguments.json {
@@ -143,18 +151,11 @@ fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {
     Ok(Desk { campaign, author: surroundings::author(), now })
 }
 
-fn one_file(
-    opening: &Opening,
-    file: &Path,
-    rulebook: &Rulebook,
-    quality: &QualityMap,
-    desk: Option<&Desk>,
-) -> anyhow::Result<Outcome> {
-    let review = Review::open(opening, file)?.heeding(quality);
+fn one_file(review: &Review, rulebook: &Rulebook, desk: Option<&Desk>) -> anyhow::Result<Outcome> {
     let screened = review.screen(rulebook, &Cancel::new())?;
     let recorded = match desk {
         None => None,
-        Some(desk) => Some(record(desk, &review, &screened)?),
+        Some(desk) => Some(record(desk, review, &screened)?),
     };
     Ok(Outcome { screened, producer: review.producer().clone(), recorded })
 }
@@ -289,17 +290,16 @@ fn tests(screened: &Screened) -> Vec<Value> {
 }
 
 fn explain(
-    opening: &Opening,
+    review: &Review,
     file: &Path,
     rulebook: &Rulebook,
-    quality: &QualityMap,
     position: &[usize],
     json: bool,
 ) -> anyhow::Result<Exit> {
-    let review = Review::open(opening, file)?.heeding(quality);
     let number = footprint("--explain", review.granule().footprints(), position)?;
     let screened = review.screen(rulebook, &Cancel::new())?;
     let evidence = screened.evidence(number).context("the footprint is gone")?;
+    let height = cloud_top(review, number)?;
     let mut out = std::io::stdout().lock();
     if json {
         let names = review.granule().footprints().names().iter().cloned();
@@ -310,6 +310,7 @@ fn explain(
             "position": position,
             "rulebook": head(rulebook),
             "rejected_by_producer": review.producer().why(number),
+            "cloud_height": height.as_ref().map(CloudTop::as_json),
             "evidence": evidence,
         });
         writeln!(out, "{answer}")?;
@@ -318,6 +319,7 @@ fn explain(
             writeln!(out, "rejected, no test looks at it: {}", clean_text(&why))?;
         }
         write_evidence(&evidence, rulebook, &mut out)?;
+        writeln!(out, "\n{}", cloud_top_words(height.as_ref()))?;
     }
     Ok(Exit::Done)
 }

@@ -2,13 +2,17 @@
 
 use std::io::{self, BufWriter, Write};
 use std::path::{Path, PathBuf};
+use std::sync::Arc;
 
 use super::Exit;
 use super::exit::{self, UsageError};
+use super::heights::Heights;
 use super::inputs::{Inputs, Reading};
+use super::rules::rulebook_or_builtin;
 use super::table::{Form, Heading, write_rows};
 use crate::granule::{Granule, Opening, ProblemKind};
-use crate::layers::{Expression, GranuleNames, Layer, LayerError, evaluate_all};
+use crate::layers::{Expression, GranuleNames, Judgements, Kept, Layer, LayerError, evaluate_all};
+use crate::screening::{CloudHeight, Rulebook, screen};
 use crate::system::{Cancel, WriteError, clean_text, write_whole};
 
 /// What was typed.
@@ -33,6 +37,11 @@ pub struct Arguments {
     quiet: bool,
     #[command(flatten)]
     reading: Reading,
+    #[command(flatten)]
+    heights: Heights,
+    /// The rulebook behind doubt, probability, flag and margin; the built-in one where none is named
+    #[arg(long, value_name = "FILE")]
+    rules: Option<PathBuf>,
 }
 
 /// What the arguments mean.
@@ -42,6 +51,9 @@ struct Plan {
     form: Form,
     quiet: bool,
     opening: Opening,
+    heights: Arc<CloudHeight>,
+    /// Where a layer asks for what tests say.
+    rulebook: Option<Rulebook>,
 }
 
 /// How the files fared.
@@ -80,8 +92,15 @@ fn plan(arguments: &Arguments) -> anyhow::Result<Plan> {
     let read = |text: &String| {
         Expression::parse(text).map_err(|error| UsageError(format!("--layer: {error}")))
     };
+    let layers: Vec<Expression> = arguments.layers.iter().map(read).collect::<Result<_, _>>()?;
+    let rulebook = match layers.iter().any(Expression::asks_tests) {
+        true => Some(rulebook_or_builtin(arguments.rules.as_deref())?),
+        false => None,
+    };
     Ok(Plan {
-        layers: arguments.layers.iter().map(read).collect::<Result<_, _>>()?,
+        layers,
+        rulebook,
+        heights: arguments.heights.method()?,
         files: arguments.inputs.files()?,
         form: if arguments.json { Form::JsonLines } else { Form::Csv },
         quiet: arguments.quiet,
@@ -178,8 +197,17 @@ fn shown(file: &Path) -> String {
 fn layers(plan: &Plan, granule: &Granule) -> anyhow::Result<Vec<Layer>> {
     let cube = granule.cube();
     let expressions: Vec<&Expression> = plan.layers.iter().collect();
-    let layers = GranuleNames::new(granule, &cube)
-        .lend_all(&Cancel::new(), |names| evaluate_all(&expressions, names))?;
+    let kept = Kept::default();
+    let cancel = Cancel::new();
+    let names = || GranuleNames::new(granule, &cube).keeping(&kept).with_retrieval(&*plan.heights);
+    let screened = match &plan.rulebook {
+        Some(rulebook) => Some(names().lend_all(&cancel, |names| screen(rulebook, names))?),
+        None => None,
+    };
+    let judgements = screened.as_ref().map(|screened| screened as &dyn Judgements);
+    let layers = names()
+        .with_judgements(judgements)
+        .lend_all(&cancel, |names| evaluate_all(&expressions, names))?;
     layers.into_iter().map(|layer| layer.map_err(anyhow::Error::new)).collect()
 }
 

@@ -27,7 +27,7 @@ pub struct GranuleNames<'g> {
     whole: Option<WholeGranule<'g>>,
     definitions: Option<&'g BTreeMap<String, Expression>>,
     judgements: Option<&'g dyn Judgements>,
-    retrievals: &'g [&'g dyn Retrieval],
+    retrievals: Vec<&'g dyn Retrieval>,
     /// One for each footprint, or none at all.
     left_out: &'g [bool],
     kept: Option<&'g Kept>,
@@ -43,7 +43,7 @@ impl<'g> GranuleNames<'g> {
             whole: None,
             definitions: None,
             judgements: None,
-            retrievals: &[],
+            retrievals: Vec::new(),
             left_out: &[],
             kept: None,
             own: Kept::default(),
@@ -62,9 +62,9 @@ impl<'g> GranuleNames<'g> {
         self
     }
 
-    /// With names for what retrievals work out.
-    pub fn with_retrievals(mut self, retrievals: &'g [&'g dyn Retrieval]) -> Self {
-        self.retrievals = retrievals;
+    /// With names for what a retrieval works out.
+    pub fn with_retrieval(mut self, retrieval: &'g dyn Retrieval) -> Self {
+        self.retrievals.push(retrieval);
         self
     }
 
@@ -284,7 +284,7 @@ impl Names for GranuleNames<'_> {
     }
 
     fn retrievals(&self) -> &[&dyn Retrieval] {
-        self.retrievals
+        &self.retrievals
     }
 
     fn neighbours(&self) -> &Neighbours {

@@ -35,3 +35,5 @@ pub use unit::LayerUnit;
 
 #[cfg(test)]
 pub(crate) use evaluation::FakeNames;
+#[cfg(test)]
+pub(crate) use neighbours::neighbourhood_spread;

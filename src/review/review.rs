@@ -11,7 +11,7 @@ use crate::layers::{
     Expression, GranuleNames, Judgements, Kept, Layer, Mistake, channels_needed, evaluate_all,
 };
 use crate::screening::health::examine;
-use crate::screening::{Rulebook, Screened, screen};
+use crate::screening::{CloudHeight, Rulebook, Screened, screen};
 use crate::system::Cancel;
 
 /// A granule on the table. Many threads may look at it at once.
@@ -22,6 +22,7 @@ pub struct Review {
     kept: Kept,
     tested: Mutex<Option<Arc<Screened>>>,
     producer: Producer,
+    heights: Arc<CloudHeight>,
 }
 
 impl Review {
@@ -37,13 +38,19 @@ impl Review {
     pub fn of(granule: Granule) -> Review {
         let cube = granule.cube();
         let (kept, producer) = (Kept::default(), Producer::default());
-        Review { granule, cube, kept, tested: Mutex::default(), producer }
+        Review { granule, cube, kept, tested: Mutex::default(), producer, heights: Arc::default() }
     }
 
     /// The same, with the producer's word on quality taken as a campaign says: tests leave out the
     /// footprints that it rejects. Reads the quality variables.
     pub fn heeding(mut self, map: &QualityMap) -> Review {
         self.producer = Producer::of(&self.granule, map);
+        self
+    }
+
+    /// The same, with another method for cloud height than that on standard atmospheres.
+    pub fn taking(mut self, heights: Arc<CloudHeight>) -> Review {
+        self.heights = heights;
         self
     }
 
@@ -64,7 +71,8 @@ impl Review {
 
     /// Its names for layer expressions.
     pub fn names(&self) -> GranuleNames<'_> {
-        GranuleNames::new(&self.granule, &self.cube).keeping(&self.kept)
+        let names = GranuleNames::new(&self.granule, &self.cube).keeping(&self.kept);
+        names.with_retrieval(&*self.heights)
     }
 
     /// The same for tests, which do not look at what the producer rejects.

@@ -3,6 +3,7 @@
 use std::collections::BTreeMap;
 use std::ops::Range;
 
+use super::cloud_height::CLOUD_HEIGHT_NAMES;
 use super::read_rulebook::{Plain, meant};
 use super::table_reader::Notebook;
 use super::threshold::Threshold;
@@ -46,8 +47,7 @@ fn once<T>(
 
 /// Names that a rulebook can't give away, for expressions mean something by them already.
 fn taken() -> impl Iterator<Item = &'static str> {
-    let fields = FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name);
-    fields.chain(functions().map(|(name, _)| name)).chain(["and", "or", "not"])
+    fields().chain(functions().map(|(name, _)| name)).chain(["and", "or", "not"])
 }
 
 fn new_word(notebook: &mut Notebook, span: &Range<usize>, name: &str) {
@@ -59,6 +59,12 @@ fn new_word(notebook: &mut Notebook, span: &Range<usize>, name: &str) {
     }
 }
 
+/// Names of the granule: fields, what follows from them, what is retrieved.
+fn fields() -> impl Iterator<Item = &'static str> {
+    let fields = FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name);
+    fields.chain(CLOUD_HEIGHT_NAMES.iter().map(|(name, _)| *name))
+}
+
 fn known_words(
     notebook: &mut Notebook,
     span: &Range<usize>,
@@ -67,13 +73,14 @@ fn known_words(
     by_name: &BTreeMap<String, Expression>,
 ) {
     for name in expression.names() {
-        let fields = || FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name);
         if by_name.contains_key(name) || fields().any(|field| field == name) {
             continue;
         }
         let indices = INDICES.iter().map(|index| index.name);
-        let known: Vec<&str> =
-            by_name.keys().map(String::as_str).chain(fields()).chain(indices).collect();
+        let mut known: Vec<&str> = by_name.keys().map(String::as_str).collect();
+        for name in fields().chain(indices) {
+            known.push(name);
+        }
         let what = format!("there is no {name}{}", meant(name, &known));
         notebook.note(span, key, format!("{what}\n    {}", clean_text(expression.text())));
     }

@@ -4,7 +4,7 @@
 //!  rulebook.toml --read--> Rulebook --run over Names--> values, thresholds, margins --combine--> Screened
 //! ```
 //!
-//! Uses: `system`, `units`, `spectral`, `granule`, `layers`.
+//! Uses: `system`, `units`, `spectral`, `granule`, `layers`, `forward`.
 //!
 //! **Never** records anything.
 
@@ -12,6 +12,7 @@ mod builtin;
 mod catalogue_used;
 mod change_threshold;
 mod check_names;
+mod cloud_height;
 mod combine;
 mod evidence;
 pub mod health;
@@ -39,6 +40,7 @@ mod worked_tests;
 
 pub use builtin::{BUILTIN_TEXT, builtin};
 pub use change_threshold::with_threshold;
+pub use cloud_height::{CLOUD_HEIGHT_NAMES, CloudHeight, Profile, ProfileError};
 pub use evidence::{
     Evidence, FamilyVoice, FlagEvidence, HealthEvidence, Reconstruction, TestEvidence,
 };

@@ -11,7 +11,7 @@ const MAY_USE: &[(&str, &[&str])] = &[
     ("granule", &["system", "units", "spectral", "netcdf_files"]),
     ("layers", &["system", "units", "spectral", "granule"]),
     ("forward", &["units", "spectral"]),
-    ("screening", &["system", "units", "spectral", "granule", "layers"]),
+    ("screening", &["system", "units", "spectral", "granule", "layers", "forward"]),
     ("flags", &["system"]),
     ("export", &["system", "units", "spectral", "netcdf_files", "granule", "flags"]),
     ("synth", &["system", "units", "spectral", "netcdf_files", "forward"]),

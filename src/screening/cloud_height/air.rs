@@ -1,0 +1,160 @@
+//! The air that cloud height is worked out with: levels, transmittances, clear radiances.
+
+use std::sync::OnceLock;
+
+use super::intervals::{INTERVALS, middle, width};
+use crate::forward::{Atmosphere, Changes, Channel, Response, Standard, View, columns};
+use crate::spectral::planck;
+
+/// View zenith angles for which transmittances are computed, degrees; between them they are linear
+/// in the secant.
+const ANGLES: [f64; 5] = [0.0, 30.0, 45.0, 55.0, 62.0];
+
+/// Clouds are looked for below this pressure only, hPa.
+const LOWEST_PRESSURE: f64 = 60.0;
+
+/// Levels of air and what they let pass.
+#[derive(Debug)]
+pub struct Air {
+    /// Pressures, hPa, from the ground upward.
+    pub pressures: Vec<f64>,
+    /// Temperatures, K.
+    pub temperatures: Vec<f64>,
+    /// The level of the tropopause: the coldest.
+    pub tropopause: usize,
+    /// By angle, then interval, then level: transmittance from the level to space.
+    transmittances: Vec<Vec<Vec<f64>>>,
+    /// By angle, then interval: radiance under clear sky over black ground as warm as the air there.
+    clear: Vec<Vec<f64>>,
+}
+
+/// Transmittances and clear radiances under one angle.
+#[derive(Debug, Clone)]
+pub struct Slant {
+    /// By interval, then level.
+    pub transmittances: Vec<Vec<f64>>,
+    /// By interval, mW m-2 sr-1 (cm-1)-1.
+    pub clear: Vec<f64>,
+}
+
+impl Air {
+    /// Computes the transmittances of an atmosphere.
+    pub fn of(air: &Atmosphere) -> Air {
+        let levels: Vec<_> =
+            air.levels().iter().take_while(|level| level.pressure >= LOWEST_PRESSURE).collect();
+        let channels: Vec<Channel> = (0..INTERVALS.len())
+            .map(|interval| Channel {
+                wavenumber: middle(interval),
+                response: Response::Box { width: width(interval) },
+            })
+            .collect();
+        let view = View {
+            zenith_angles: ANGLES.to_vec(),
+            sun_zenith: None,
+            cloud_heights: levels.iter().skip(1).map(|level| level.height).collect(),
+        };
+        let ground = levels.first().map_or(0.0, |level| level.temperature);
+        let (mut transmittances, mut clear) = (Vec::new(), Vec::new());
+        for column in columns(air, &channels, &view) {
+            let of = |interval: usize| -> Vec<f64> {
+                let above = column.above.iter().map(|above| above.transmittance[interval]);
+                let all = std::iter::once(column.transmittance[interval]).chain(above);
+                all.map(f64::from).collect()
+            };
+            transmittances.push((0..INTERVALS.len()).map(of).collect());
+            let radiance = |interval: usize| {
+                let passes = f64::from(column.transmittance[interval]);
+                f64::from(column.emission[interval]) + passes * planck(middle(interval), ground)
+            };
+            clear.push((0..INTERVALS.len()).map(radiance).collect());
+        }
+        let temperatures: Vec<f64> = levels.iter().map(|level| level.temperature).collect();
+        let coldest = (0..temperatures.len())
+            .min_by(|one, other| temperatures[*one].total_cmp(&temperatures[*other]));
+        Air {
+            pressures: levels.iter().map(|level| level.pressure).collect(),
+            tropopause: coldest.unwrap_or(0),
+            temperatures,
+            transmittances,
+            clear,
+        }
+    }
+
+    /// The standard atmosphere nearest by latitude (degrees) and season (-1 winter, 1 summer): the
+    /// tropical one up to 30 degrees, those of the middle latitudes up to 52, halfway between 45
+    /// and 60, the subarctic ones beyond. Without latitude that of the United States; without season
+    /// the same beyond the tropics. Computed at the first call.
+    pub fn nearest(latitude: f64, season: f64) -> &'static Air {
+        static COMPUTED: [OnceLock<Air>; 6] = [const { OnceLock::new() }; 6];
+        let standard = match latitude.abs() {
+            latitude if latitude < 30.0 => Standard::Tropical,
+            latitude if latitude.is_nan() || season.is_nan() => Standard::UsStandard,
+            latitude if latitude < 52.0 && season > 0.0 => Standard::MidlatitudeSummer,
+            latitude if latitude < 52.0 => Standard::MidlatitudeWinter,
+            _ if season > 0.0 => Standard::SubarcticSummer,
+            _ => Standard::SubarcticWinter,
+        };
+        let compute = || Air::of(&Atmosphere::new(standard, &Changes::default()));
+        COMPUTED[standard as usize].get_or_init(compute)
+    }
+
+    /// What is seen under a view zenith angle, degrees.
+    pub fn slant(&self, zenith: f64) -> Slant {
+        let secant = |angle: f64| 1.0 / angle.to_radians().cos();
+        let last = ANGLES.len() - 1;
+        let far = ANGLES.partition_point(|angle| *angle < zenith).clamp(1, last);
+        let (near, beyond) = (secant(ANGLES[far - 1]), secant(ANGLES[far]));
+        let share = ((secant(zenith.min(ANGLES[last])) - near) / (beyond - near)).clamp(0.0, 1.0);
+        let mix = |one: &Vec<f64>, other: &Vec<f64>| -> Vec<f64> {
+            one.iter().zip(other).map(|(one, other)| one + share * (other - one)).collect()
+        };
+        let (one, other) = (&self.transmittances[far - 1], &self.transmittances[far]);
+        Slant {
+            transmittances: one.iter().zip(other).map(|(one, other)| mix(one, other)).collect(),
+            clear: mix(&self.clear[far - 1], &self.clear[far]),
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::screening::cloud_height::slicing::overcast;
+
+    #[test]
+    fn the_atmosphere_follows_latitude_and_season() {
+        let ground = |latitude, season| Air::nearest(latitude, season).temperatures[0];
+        // Temperatures at the ground of [Anderson et al. 1986].
+        assert_eq!(ground(-8.0, f64::NAN), 299.7);
+        assert_eq!((ground(45.0, 0.5), ground(-45.0, -0.5)), (294.2, 272.2));
+        assert_eq!((ground(70.0, 0.5), ground(70.0, -0.5)), (287.2, 257.2));
+        assert_eq!((ground(f64::NAN, 1.0), ground(50.0, f64::NAN)), (288.2, 288.2));
+    }
+
+    /// The discrete rule and the forward model's own cloud agree: what an opaque cloud takes from
+    /// clear sky is the sum over levels. 4 % covers one Planck function for an interval, and the
+    /// trapezoid over levels 1 to 2 km apart against layers with a source of their own.
+    #[test]
+    fn the_sum_over_levels_is_what_an_opaque_cloud_takes() {
+        let air = Atmosphere::new(Standard::MidlatitudeSummer, &Changes::default());
+        let own = Air::of(&air);
+        let slant = own.slant(0.0);
+        let at = own.pressures.iter().position(|pressure| *pressure < 350.0).unwrap();
+        let height = air.levels()[at].height;
+        let view = View { zenith_angles: vec![0.0], sun_zenith: None, cloud_heights: vec![height] };
+        for interval in 0..INTERVALS.len() {
+            let channel = Channel {
+                wavenumber: middle(interval),
+                response: Response::Box { width: width(interval) },
+            };
+            let above = &columns(&air, &[channel], &view)[0].above[0];
+            let black = planck(middle(interval), own.temperatures[at]);
+            let cloudy = f64::from(above.emission[0]) + f64::from(above.transmittance[0]) * black;
+            let taken = cloudy - slant.clear[interval];
+            let sum =
+                overcast(middle(interval), &own.temperatures, &slant.transmittances[interval], 0.0)
+                    [at];
+            assert!((sum / taken - 1.0).abs() < 0.04, "{interval}: {sum} {taken}");
+        }
+    }
+}
