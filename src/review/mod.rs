@@ -7,6 +7,7 @@
 
 mod cases;
 mod adopting;
+mod alike;
 mod exporting;
 mod many_spectra;
 mod producer;
@@ -24,6 +25,7 @@ mod suggestions;
 mod verbs;
 
 pub use adopting::{ThresholdChange, adopt_threshold};
+pub use alike::Measure;
 pub use cases::Case;
 pub use exporting::ExportedBy;
 pub use many_spectra::ManySpectra;

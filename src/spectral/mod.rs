@@ -12,6 +12,7 @@ mod band_integral;
 mod channel_axis;
 mod energy;
 pub mod fast;
+mod likeness;
 mod noise;
 mod noise_shape;
 mod planck;
@@ -31,6 +32,7 @@ pub use channel_axis::{AxisError, ChannelAxis, Nearest};
 pub use energy::{
     ENERGY_BANDS, Energy, EnergyBand, Stretch, absorption, energy_view, window_temperature,
 };
+pub use likeness::{distance, spectral_angle};
 pub use noise::{nedt, nedt_at};
 pub use noise_shape::NoiseShape;
 pub use planck::{

@@ -55,6 +55,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         }
         Answer::Exported { request, found } => exported(app, request, found),
         Answer::Against { request, found } => spreading::against_found(app, request, found),
+        Answer::Alike { request, found } => spreading::found(app, request, found),
         Answer::Adopted { request, found } => adopted(app, request, found),
         Answer::Selected { request, join, found } => picking::selected(app, request, join, found),
     }

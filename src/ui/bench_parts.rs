@@ -180,6 +180,8 @@ pub struct Awaited {
     pub screen: u64,
     /// Evaluating the second layer of the Spread.
     pub against: u64,
+    /// Comparing spectra.
+    pub alike: u64,
     /// Taking a threshold over into the rulebook.
     pub adopt: u64,
     /// Finding footprints to select.

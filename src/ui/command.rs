@@ -3,6 +3,7 @@
 use super::keys::{self, Action, BINDINGS};
 use super::selecting::{Join, Says, Wanted};
 use super::side::Side;
+use crate::review::Measure;
 use crate::units::wavenumber_from_text;
 
 /// A command with its words.
@@ -20,6 +21,8 @@ pub enum Command {
     Withdraw(String, Option<String>),
     /// A second layer for the Spread; none where there are no words.
     Against(String),
+    /// Compare all spectra with the one under the cursor.
+    Alike(Measure),
     /// Take a test in hand, to try its threshold.
     Try(String),
     /// Select footprints.
@@ -75,6 +78,16 @@ const WORDED: &[Worded] = &[
         words: "[EXPR]",
         help: "a second layer for the Spread; without words one again",
         parse: |words| Ok(Command::Against(words.to_owned())),
+    },
+    Worded {
+        name: "like",
+        words: "[angle]",
+        help: "spectra like this one, by distance in BT or spectral angle",
+        parse: |words| match words {
+            "" | "distance" => Ok(Command::Alike(Measure::Distance)),
+            "angle" => Ok(Command::Alike(Measure::Angle)),
+            _ => Err("distance or angle".to_owned()),
+        },
     },
     Worded {
         name: "try",

@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use crate::flags::{FootprintSet, GranuleIdentity, LedgerReading};
 use crate::layers::Layer;
-use crate::review::{ManySpectra, Record, Review, Spectrum, ThresholdChange};
+use crate::review::{ManySpectra, Measure, Record, Review, Spectrum, ThresholdChange};
 use crate::screening::Screened;
 use crate::system::Cancel;
 use crate::tray::Standing;
@@ -14,12 +14,25 @@ use super::bench::Quality;
 use super::panes::strip::Group;
 use super::place::Place;
 use super::selecting::{Found, Join};
-use super::spreading::Against;
+use super::spreading::{Against, Alike};
 use super::trace_look::{Beside, ReferenceFile};
 
 /// Something to be done. Each carries the number of its request, which the answer repeats: an
 /// answer whose number is no longer waited for is dropped.
 pub enum Job {
+    /// Compare all spectra with one.
+    Alike {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// The one.
+        footprint: usize,
+        /// By what.
+        measure: Measure,
+        /// Ends it early.
+        cancel: Cancel,
+    },
     /// Evaluate the second layer of the Spread.
     Against {
         /// The request.
@@ -217,6 +230,13 @@ pub enum TraceFound {
 
 /// What a job found.
 pub enum Answer {
+    /// All spectra were compared with one.
+    Alike {
+        /// The request.
+        request: u64,
+        /// How far they are from it.
+        found: Result<Alike, String>,
+    },
     /// The second layer of the Spread was evaluated.
     Against {
         /// The request.

@@ -55,7 +55,7 @@ fn lane_of(job: &Job) -> Lane {
             Lane::Alone
         }
         Job::Pinned { .. } | Job::Reread { .. } | Job::Select { .. } => Lane::Alone,
-        Job::Against { .. } | Job::Adopt { .. } => Lane::Alone,
+        Job::Against { .. } | Job::Adopt { .. } | Job::Alike { .. } => Lane::Alone,
         Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
     }
 }

@@ -217,6 +217,7 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
         Command::Planck(kelvins) => tracing::planck(app, kelvins),
         Command::Reference(path) => tracing::reference_file(app, &path),
         Command::Against(text) => spreading::against(app, &text),
+        Command::Alike(measure) => spreading::ask(app, measure),
         Command::Try(name) => spreading::take_test(app, &name),
         Command::Select(join, wanted) => picking::select(app, join, wanted),
         Command::Range(range) => looking::set_range(app, range),

@@ -96,6 +96,8 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
             deciding::decide(app, action)
         }
         A::NextTest | A::PreviousTest | A::Valley | A::TurnSide => spreading::act(app, action),
+        A::Alike => spreading::ask(app, crate::review::Measure::Distance),
+        A::Growing => spreading::switch_growing(app),
         A::Adopt => spreading::ask_to_adopt(app),
         A::Box | A::Polygon | A::Join | A::Invert | A::Reselect => picking::pick(app, action),
         A::SignOff | A::Reopen => deciding::decide(app, action),

@@ -16,7 +16,7 @@ use super::bench::Quality;
 use super::jobs::{Answer, Job, TraceAsk, TraceFound};
 use super::place;
 use super::selecting::where_holds;
-use super::spreading::Against;
+use super::spreading::{Against, Alike};
 use super::strip;
 use super::trace_look::{Beside, ReferenceFile};
 
@@ -37,6 +37,12 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
                 values: layer.values,
             });
             send(Answer::Against { request: *request, found: layer });
+        }
+        Job::Alike { request, review, footprint, measure, cancel } => {
+            let (footprint, measure) = (*footprint, *measure);
+            let values = review.alike(footprint, measure, cancel);
+            let found = values.map(|values| Alike { footprint, measure, values });
+            send(Answer::Alike { request: *request, found });
         }
         Job::Adopt { request, change } => {
             let found = adopt_threshold(&outside.campaign, &outside.author, change);
@@ -124,6 +130,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
     let why = || why.to_owned();
     Some(match job {
         Job::Against { request, .. } => Answer::Against { request: *request, found: Err(why()) },
+        Job::Alike { request, .. } => Answer::Alike { request: *request, found: Err(why()) },
         Job::Adopt { request, .. } => Answer::Adopted { request: *request, found: Err(why()) },
         Job::Standing { entry, .. } => Answer::Standing { entry: *entry, found: Err(why()) },
         Job::Open { request, .. } => Answer::Opened { request: *request, found: Err(why()) },

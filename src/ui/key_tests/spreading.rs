@@ -116,3 +116,32 @@ fn a_threshold_of_a_test_becomes_the_campaigns() {
     let kept = again.bench().tests.screened.clone().unwrap().rulebook.fingerprint.clone();
     assert_eq!(kept, after, "and do so in the next session");
 }
+
+#[test]
+fn spectra_like_this_one_are_grown_from_here_or_found_everywhere() {
+    let (_place, mut trial) = one_granule();
+    // Black bodies of 250 + n kelvins: the distance in BT is the difference of the numbers.
+    trial.keys("Down Down Right L");
+    let here = 2 * POSITIONS + 1;
+    let screen = trial.screen(120, 24);
+    assert!(screen.contains("Spread distance in BT from (2, 1)"), "{screen}");
+    let values = &trial.bench().spread.alike.as_ref().unwrap().values;
+    // The inverse of a value that was kept in 64 bits is exact but for rounding.
+    assert!((values[here + 5] - 5.0).abs() < 1e-6 && values[here].abs() < 1e-9);
+    trial.keys("W");
+    let (x, all) = (trial.bench().spread.x.unwrap(), selection(&trial));
+    let expected: Vec<usize> =
+        (0..ALL).filter(|one| (one.abs_diff(here) as f64) < x - 1e-6).collect();
+    assert_eq!(all, expected);
+    // Closer than three are two before and two behind; the one at the end of the line before does
+    // not hang together with them.
+    while trial.bench().spread.x.unwrap() > 2.6 {
+        trial.keys("Left");
+    }
+    trial.keys("W");
+    assert_eq!(selection(&trial), (here - 1..=here + 2).collect::<Vec<_>>());
+    trial.keys("f c");
+    assert_eq!(trial.flagged("cloudy").len(), 4);
+    trial.types(":like angle").keys("Enter");
+    assert!(trial.screen(120, 24).contains("spectral angle from"), "{}", trial.message());
+}

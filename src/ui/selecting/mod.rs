@@ -2,12 +2,14 @@
 //! the two go together.
 
 mod condition;
+mod grow;
 mod polygon;
 mod selecting;
 mod shape;
 mod wanted;
 
 pub use condition::{Found, where_holds};
+pub use grow::connected;
 pub use polygon::is_inside;
 pub use selecting::{Join, Selecting};
 pub use shape::Shape;

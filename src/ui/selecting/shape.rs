@@ -5,7 +5,7 @@ use crate::ui::bench::Bench;
 use crate::ui::overlay::Selection;
 use crate::ui::side::Side;
 
-use super::is_inside;
+use super::{connected, is_inside};
 
 /// What is being drawn or typed; it follows the cursor until it is kept.
 #[derive(Debug, Clone, PartialEq)]
@@ -64,6 +64,12 @@ fn on_one_layer(shape: &Shape, bench: &Bench) -> Selection {
     let all = values.iter().enumerate();
     let footprints: FootprintSet =
         all.filter(|(_, value)| is_in(**value)).map(|(one, _)| one).collect();
+    let footprints = match (bench.spread_alike(), shape) {
+        (Some(alike), Shape::Threshold) if bench.spread.grown => {
+            connected(&footprints, alike.footprint, &bench.placement)
+        }
+        _ => footprints,
+    };
     let (name, count) = (bench.spread_name(), footprints.len());
     let words = match shape {
         Shape::Range(from) => format!("{count} where {name} is {} to {}", from.min(x), from.max(x)),

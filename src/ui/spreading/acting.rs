@@ -59,7 +59,7 @@ fn first_place(values: &[f64], range: (f64, f64)) -> f64 {
 }
 
 /// A round step for a range of values.
-fn step_of(range: (f64, f64)) -> f64 {
+pub(super) fn step_of(range: (f64, f64)) -> f64 {
     let rough = (range.1 - range.0) / STEPS;
     let power = 10f64.powf(rough.log10().floor());
     let fits = |factor: &f64| factor * power >= rough * 0.999;
@@ -67,7 +67,7 @@ fn step_of(range: (f64, f64)) -> f64 {
 }
 
 /// A value moved by so many steps, to a round one.
-fn nudged(value: f64, steps: f64, range: (f64, f64)) -> f64 {
+pub(super) fn nudged(value: f64, steps: f64, range: (f64, f64)) -> f64 {
     let step = step_of(range);
     rounded((value / step + steps).round(), step)
 }
@@ -88,7 +88,7 @@ fn upwards_of(bench: &Bench, steps: f64) -> Option<f64> {
 
 /// Puts the threshold, or the place on the picture of two layers; a threshold selects what lies
 /// beyond it unless something else is being drawn.
-fn put(bench: &mut Bench, x: f64, y: Option<f64>) {
+pub(super) fn put(bench: &mut Bench, x: f64, y: Option<f64>) {
     bench.spread.x = Some(x);
     bench.spread.y = y;
     if bench.spread.against.is_none()
@@ -161,7 +161,7 @@ fn take(app: &mut App, source: Source) -> Vec<Job> {
     bench.spread.source = source;
     let Some((screened, place, way)) = bench.spread_test() else {
         let lacks = match source {
-            Source::Layer => "the Spread shows the layer again".to_owned(),
+            Source::Layer | Source::Alike => "the Spread shows the layer again".to_owned(),
             Source::Test(_) => "the file does not allow this test".to_owned(),
         };
         bench.spread.source = Source::Layer;

@@ -2,6 +2,7 @@
 
 use std::borrow::Cow;
 
+use crate::review::Measure;
 use crate::screening::{Screened, Sense, Threshold, Way, usual_range};
 use crate::ui::bench::Bench;
 
@@ -13,6 +14,19 @@ pub enum Source {
     Layer,
     /// A test of the rulebook, by its place.
     Test(usize),
+    /// How far the spectra are from one of them.
+    Alike,
+}
+
+/// How far the spectra of a granule are from one of them.
+#[derive(Debug, Clone)]
+pub struct Alike {
+    /// The one.
+    pub footprint: usize,
+    /// By what they were compared.
+    pub measure: Measure,
+    /// One number per footprint.
+    pub values: Vec<f64>,
 }
 
 /// The Spread of a granule.
@@ -20,6 +34,10 @@ pub enum Source {
 pub struct Spread {
     /// Whose values it shows.
     pub source: Source,
+    /// How far the spectra are from one of them, once that was asked for.
+    pub alike: Option<Alike>,
+    /// Only footprints that hang together with that one are meant.
+    pub grown: bool,
     /// A second layer, which goes upwards.
     pub against: Option<Against>,
     /// The threshold, or the place across that the keys move.
@@ -45,6 +63,9 @@ impl Bench {
     /// The values that the Spread shows; those of a test with a threshold of its own for each
     /// footprint are the differences from it.
     pub fn spread_values(&self) -> Cow<'_, [f64]> {
+        if let Some(alike) = self.spread_alike() {
+            return Cow::Borrowed(&alike.values);
+        }
         let Some((screened, place, way)) = self.spread_test() else {
             return Cow::Borrowed(&self.layer.values);
         };
@@ -67,8 +88,17 @@ impl Bench {
         Some((screened, place, screened.rulebook.tests.get(place)?.ways.get(way)?))
     }
 
+    /// The spectra's distances from one of them, while they are on show.
+    pub fn spread_alike(&self) -> Option<&Alike> {
+        self.spread.alike.as_ref().filter(|_| self.spread.source == Source::Alike)
+    }
+
     /// What the values are, in words.
     pub fn spread_name(&self) -> String {
+        if let Some(alike) = self.spread_alike() {
+            let place = self.position_words(alike.footprint);
+            return format!("{} from {place}", alike.measure.words());
+        }
         match self.spread_test() {
             None => self.layer.text.clone(),
             Some((screened, place, way)) => {
@@ -83,7 +113,11 @@ impl Bench {
 
     /// The unit of the values.
     pub fn spread_unit(&self) -> &str {
-        if self.spread_test().is_some() { "" } else { &self.layer.unit }
+        match self.spread_alike() {
+            Some(alike) => alike.measure.unit(),
+            None if self.spread_test().is_some() => "",
+            None => &self.layer.unit,
+        }
     }
 
     /// From where to where the values go, and the threshold too.

@@ -1,0 +1,71 @@
+//! Footprints whose spectra resemble the one under the cursor.
+
+use std::sync::Arc;
+
+use super::acting::{nudged, put};
+use super::{Alike, Source};
+use crate::review::Measure;
+use crate::screening::proposed_threshold;
+use crate::system::Cancel;
+use crate::ui::app::App;
+use crate::ui::jobs::Job;
+use crate::ui::keys::Action;
+use crate::ui::looking::no_granule;
+use crate::ui::panes::Pane;
+
+/// Asks how far every spectrum is from the one under the cursor.
+pub fn ask(app: &mut App, measure: Measure) -> Vec<Job> {
+    let request = app.request();
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    if !bench.filling.done {
+        app.say("spectra are compared as soon as all are read");
+        return Vec::new();
+    }
+    bench.awaited.alike = request;
+    let (review, footprint) = (Arc::clone(&bench.review), bench.cursor);
+    app.say("comparing spectra…");
+    vec![Job::Alike { request, review, footprint, measure, cancel: Cancel::new() }]
+}
+
+/// Shows the distances on the Spread, with a threshold at the valley between alike and other ones.
+pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<Job> {
+    let (growing, leave) = (app.keymap.hint(Action::Growing), app.keymap.hint(Action::Cancel));
+    let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.alike == request) else {
+        return Vec::new();
+    };
+    bench.awaited.alike = 0;
+    let alike = match found {
+        Ok(alike) => alike,
+        Err(why) => {
+            app.warn(why);
+            return Vec::new();
+        }
+    };
+    bench.forget_spread();
+    bench.spread.against = None;
+    bench.spread.above = false;
+    bench.spread.grown = true;
+    let cut = proposed_threshold(&alike.values);
+    bench.spread.alike = Some(alike);
+    bench.spread.source = Source::Alike;
+    let range = bench.spread_range(&bench.spread_values());
+    let Some((cut, range)) = cut.zip(range) else {
+        app.say("all spectra are alike");
+        return Vec::new();
+    };
+    put(bench, nudged(cut, 0.0, range), None);
+    app.panes.focus_on(Pane::Spread);
+    app.say(format!(
+        "like this one: Left and Right say how alike, {growing} grown or everywhere, {leave} leaves it"
+    ));
+    Vec::new()
+}
+
+/// Those that hang together with the one, or all alike ones anywhere.
+pub fn switch_growing(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    bench.spread.grown = !bench.spread.grown;
+    let grown = bench.spread.grown;
+    app.say(if grown { "those that hang together with it" } else { "anywhere" });
+    Vec::new()
+}
