@@ -75,7 +75,7 @@ mod on_screen {
         let theme = theme(request, &arguments);
         let files = arguments.inputs.files()?;
         let is_new = !arguments.campaign.exists();
-        let campaign = Campaign::open_or_create(&arguments.campaign)?;
+        let (campaign, unwritable) = Campaign::open_as_possible(&arguments.campaign)?;
         surroundings::now()?;
         let outside = Outside {
             opening: arguments.reading.opening()?,
@@ -85,6 +85,7 @@ mod on_screen {
             // The form of RADSIEVE_NOW was checked above.
             clock: Arc::new(|| surroundings::now().unwrap_or_else(|_| jiff::Timestamp::now())),
             keys: own_settings::keys()?,
+            look_only: unwritable.map(|error| error.to_string()),
             first_layer: arguments.layer.clone(),
         };
         let mut app = App::new(outside, theme, Tray::new(files));

@@ -90,6 +90,21 @@ impl Campaign {
         Self::open(folder)
     }
 
+    /// Opens a campaign for writing, or for reading alone where it is there and cannot be written
+    /// to; then with the reason.
+    ///
+    /// # Errors
+    /// It can be neither written to nor read, or its settings make no sense.
+    pub fn open_as_possible(folder: &Path) -> Result<(Self, Option<CampaignError>), CampaignError> {
+        match Self::open_or_create(folder) {
+            Ok(campaign) => Ok((campaign, None)),
+            Err(unwritable @ CampaignError::Unwritable { .. }) if folder.is_dir() => {
+                Ok((Self::open(folder)?, Some(unwritable)))
+            }
+            Err(error) => Err(error),
+        }
+    }
+
     /// Opens a campaign for reading; writes nothing.
     ///
     /// # Errors
@@ -248,6 +263,19 @@ mod tests {
         let error = Campaign::open_or_create(&file.join("campaign")).unwrap_err();
         assert!(error.to_string().contains("choose another with --campaign"), "{error}");
         assert!(matches!(Campaign::open(&file), Err(CampaignError::Missing(_))));
+    }
+
+    #[test]
+    fn a_campaign_that_cannot_be_written_to_can_be_looked_at() {
+        let dir = tempfile::tempdir().unwrap();
+        // Rights do not stop everybody; a file in the way does.
+        std::fs::write(dir.path().join(LEDGERS), "").unwrap();
+        let (campaign, why) = Campaign::open_as_possible(dir.path()).unwrap();
+        assert!(matches!(why, Some(CampaignError::Unwritable { .. })));
+        assert_eq!(campaign.settings(), &CampaignSettings::default());
+        assert!(Campaign::open_as_possible(&dir.path().join("none/ledgers")).unwrap().1.is_none());
+        std::fs::write(dir.path().join("file"), "").unwrap();
+        assert!(Campaign::open_as_possible(&dir.path().join("file/campaign")).is_err());
     }
 
     #[test]

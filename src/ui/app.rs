@@ -37,6 +37,8 @@ pub struct Outside {
     pub clock: Arc<dyn Fn() -> Timestamp + Send + Sync>,
     /// Keys of the person's own.
     pub keys: Vec<KeySetting>,
+    /// Why nothing can be decided, where the campaign cannot be written to.
+    pub look_only: Option<String>,
     /// The layer to begin with instead of the suggested one.
     pub first_layer: Option<String>,
 }

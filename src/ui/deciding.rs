@@ -10,7 +10,6 @@ use crate::review::{Record, Refusal};
 
 use super::app::App;
 use super::bench::RecordState;
-use super::colour::Tone;
 use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
@@ -46,11 +45,15 @@ pub fn decided(
     verb: impl FnOnce(&mut Record, Timestamp) -> Result<String, Refusal>,
 ) -> bool {
     let now = app.now();
+    let look_only = app.outside.look_only.clone();
     let Some(bench) = app.bench_mut() else {
         no_granule(app);
         return false;
     };
     let outcome = match &mut bench.record {
+        RecordState::Open(_) if look_only.is_some() => {
+            Err(format!("looking only: {}", look_only.unwrap_or_default()))
+        }
         RecordState::Open(record) => verb(record, now).map_err(|refusal| refusal.to_string()),
         RecordState::Reading => {
             bench.asked_early = true;
@@ -123,7 +126,7 @@ fn again(app: &mut App) -> Vec<Job> {
 pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
     let Selection { footprints, words } = selection;
     let again = deed.clone();
-    let jobs = change(app, move |record, now| match deed {
+    let done = decided(app, move |record, now| match deed {
         Deed::Flag { give: true, flag, why } => {
             record.flag(&flag, &footprints, why, now).map(|()| format!("{words}: {flag}"))
         }
@@ -138,13 +141,13 @@ pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
             .comment(&footprints, &text, now)
             .map(|()| format!("{words}: remark written down")),
     });
-    if app.message.1 != Tone::Warning {
+    if done {
         app.last_deed = Some(again);
         if let Some(bench) = app.bench_mut() {
             bench.selecting.clear();
         }
     }
-    jobs
+    Vec::new()
 }
 
 fn assess(app: &mut App) -> Vec<Job> {

@@ -69,6 +69,8 @@ pub fn write_granule(path: &Path) {
 pub struct Place {
     folder: tempfile::TempDir,
     seconds: Arc<AtomicI64>,
+    /// Why nothing can be decided, if so.
+    pub look_only: Option<String>,
 }
 
 impl Place {
@@ -78,7 +80,7 @@ impl Place {
         for name in names {
             write_granule(&folder.path().join(name));
         }
-        Place { folder, seconds: Arc::default() }
+        Place { folder, seconds: Arc::default(), look_only: None }
     }
 
     fn clock(&self) -> Arc<dyn Fn() -> Timestamp + Send + Sync> {
@@ -123,6 +125,7 @@ impl Place {
             program: "0.0.0".to_owned(),
             clock: self.clock(),
             keys: Vec::new(),
+            look_only: self.look_only.clone(),
             first_layer: None,
         };
         let theme = Theme { depth: ColourDepth::None, ascii: true, background: Background::Dark };

@@ -147,3 +147,18 @@ fn the_mask_is_exported_once_all_is_kept() {
     assert!(trial.message().starts_with("exported to"), "{}", trial.message());
     assert!(folder.join("lowen_001.mask.nc").exists());
 }
+
+#[test]
+fn a_campaign_that_cannot_be_written_to_is_only_looked_at() {
+    let mut place = Place::with(&["lowen_001.nc"]);
+    place.review(&["lowen_001.nc"]).keys("f c");
+    place.look_only = Some("cannot write to the campaign folder".to_owned());
+    let mut trial = place.review(&["lowen_001.nc"]);
+    assert_eq!(trial.flagged("cloudy"), [0], "what was decided is on show");
+    assert!(trial.screen(120, 40).contains("looking only"));
+    trial.keys("Right f c");
+    assert_eq!(trial.message(), "looking only: cannot write to the campaign folder");
+    trial.keys("u S y");
+    assert_eq!(trial.flagged("cloudy"), [0]);
+    assert_eq!((trial.record().decisions().len(), trial.app.pending()), (1, 0));
+}

@@ -58,6 +58,8 @@ pub struct TrayShares {
     pub no_flag: f64,
     /// Share that nobody and nothing has assessed, 0 to 1.
     pub not_assessed: f64,
+    /// Share that tests leave in doubt, 0 to 1, once they have run.
+    pub in_doubt: Option<f64>,
 }
 
 impl TrayState {
@@ -112,10 +114,11 @@ pub fn draw(view: &TrayView<'_>, theme: &Theme, area: Rect, buffer: &mut Buffer)
     let each = each_takes(view.rows.len(), inner.height);
     let shown = usize::from(inner.height / each);
     let first = first_shown(view.cursor, view.rows.len(), shown);
+    let common = common_words(view.rows);
     for (index, row) in view.rows.iter().enumerate().skip(first).take(shown) {
         let y = inner.y + (index - first) as u16 * each;
         let line = Rect { y, height: 1, ..inner };
-        draw_name(view, index, row, theme, line, buffer);
+        draw_name(view, common, (index, row), theme, line, buffer);
         if each == 2 {
             let below =
                 Rect { x: line.x + 3, y: y + 1, width: line.width.saturating_sub(4), ..line };
@@ -142,8 +145,8 @@ fn each_takes(rows: usize, height: u16) -> u16 {
 
 fn draw_name(
     view: &TrayView<'_>,
-    index: usize,
-    row: &TrayRow,
+    common: usize,
+    (index, row): (usize, &TrayRow),
     theme: &Theme,
     line: Rect,
     buffer: &mut Buffer,
@@ -161,16 +164,16 @@ fn draw_name(
     let sign = row.state.sign(theme.ascii).to_string();
     put(right(1), &sign, theme.style(row.state.tone()), theme.ascii, buffer);
     let tone = if is_current { Tone::Strong } else { Tone::Plain };
-    let name = abbreviated(&row.name, usize::from(right(3).width), theme.ascii);
+    let name = abbreviated(&row.name, common, usize::from(right(3).width), theme.ascii);
     put(right(3), &name, theme.style(tone), theme.ascii, buffer);
     if view.focused && index == view.cursor {
         buffer.set_style(right(1), Modifier::REVERSED);
     }
 }
 
-/// A name that is too long loses its extension and then its beginning: the names of one day's
-/// granules begin alike.
-fn abbreviated(name: &str, width: usize, ascii: bool) -> String {
+/// A name that is too long loses its extension, then the words that all names begin with, then its
+/// beginning: the names of one day's granules begin alike.
+fn abbreviated(name: &str, common: usize, width: usize, ascii: bool) -> String {
     if name.width() <= width {
         return name.to_string();
     }
@@ -178,14 +181,38 @@ fn abbreviated(name: &str, width: usize, ascii: bool) -> String {
         Some((stem, _)) if !stem.is_empty() => stem,
         _ => name,
     };
-    cut_front(stem, width, ascii)
+    match stem.get(common..) {
+        Some(rest) if common > 0 && stem.width() > width && rest.width() < width => {
+            format!("{}{rest}", if ascii { '~' } else { '…' })
+        }
+        _ => cut_front(stem, width, ascii),
+    }
 }
 
+/// The length in bytes of the whole words that all names begin with; 0 for a single name.
+fn common_words(rows: &[TrayRow]) -> usize {
+    let [first, others @ ..] = rows else { return 0 };
+    let same = |name: &str| {
+        let pairs = first.name.char_indices().zip(name.chars());
+        let differs = pairs.clone().find(|((_, one), other)| one != other);
+        differs.map_or(first.name.len().min(name.len()), |((at, _), _)| at)
+    };
+    let shortest = others.iter().map(|row| same(&row.name)).min().unwrap_or(0);
+    let alike = first.name.get(..shortest).unwrap_or_default();
+    alike.rfind(['_', '-', '.', '/']).map_or(0, |at| at + 1)
+}
+
+/// What is left to decide matters most, then what is flagged.
 fn detail(row: &TrayRow, width: u16) -> String {
     let Some(shares) = row.shares else { return row.state.words().to_string() };
-    let flagged = format!("{} flagged", percent(shares.flagged));
-    let whole = format!("{flagged}, {} not assessed", percent(shares.not_assessed));
-    if whole.len() <= usize::from(width) { whole } else { flagged }
+    let doubt = shares.in_doubt.filter(|doubt| *doubt > 0.0);
+    let mut parts = Vec::from_iter(doubt.map(|doubt| format!("{} in doubt", percent(doubt))));
+    parts.push(format!("{} flagged", percent(shares.flagged)));
+    parts.push(format!("{} not assessed", percent(shares.not_assessed)));
+    parts.push(format!("{} no flag", percent(shares.no_flag)));
+    let fits = |count: &usize| parts[..*count].join(", ").len() <= usize::from(width);
+    let count = (1..=parts.len()).rev().find(fits).unwrap_or(1);
+    parts[..count].join(", ")
 }
 
 /// A share in whole percent, of which 0% and 100% are exact.
@@ -208,7 +235,12 @@ mod tests {
     fn rows() -> Vec<TrayRow> {
         let row = |state, name: &str, shares| TrayRow { state, name: name.to_string(), shares };
         let shares = |flagged, not_assessed| {
-            Some(TrayShares { flagged, no_flag: 1.0 - flagged - not_assessed, not_assessed })
+            Some(TrayShares {
+                flagged,
+                no_flag: 1.0 - flagged - not_assessed,
+                not_assessed,
+                in_doubt: None,
+            })
         };
         vec![
             row(TrayState::SignedOff, "brindle_lowen_cloud.nc", shares(0.123, 0.0)),
@@ -251,6 +283,30 @@ mod tests {
         );
         assert!(screen.buffer[(5, 2)].modifier.contains(Modifier::REVERSED));
         assert_eq!(row_at(&view, screen.area(), 0, 1), Some(1));
+    }
+
+    #[test]
+    fn long_names_lose_the_words_that_all_begin_with() {
+        let row = |name: &str| TrayRow {
+            state: TrayState::Untouched,
+            name: name.to_string(),
+            shares: Some(TrayShares {
+                flagged: 0.25,
+                no_flag: 0.5,
+                not_assessed: 0.25,
+                in_doubt: Some(0.03),
+            }),
+        };
+        let rows = ["brindle_lowen_001.nc", "brindle_lowen_evening.nc"].map(row);
+        let view = TrayView { rows: &rows, current: 0, cursor: 0, focused: false };
+        let mut screen = Screen::new(17, 5);
+        draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        assert_eq!(
+            screen.lines()[1..],
+            ["▸○ …001", "   3% in doubt", " ○ …evening", "   3% in doubt"]
+        );
+        assert_eq!(detail(&rows[0], 30), "3% in doubt, 25% flagged");
+        assert_eq!(common_words(&rows[..1]), 0);
     }
 
     #[test]

@@ -11,6 +11,9 @@ use crate::ui::selecting::Join;
 /// Short facts at the right of the status line, the most important first.
 pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
     let mut facts = Vec::new();
+    if app.outside.look_only.is_some() {
+        facts.push(("looking only".to_owned(), Tone::Warning));
+    }
     match (app.pending(), app.write_failure()) {
         (0, _) => {}
         (pending, Some(_)) => facts.push((format!("{pending} NOT WRITTEN"), Tone::Bad)),

@@ -39,6 +39,7 @@ fn tray_rows(app: &App) -> Vec<TrayRow> {
 }
 
 fn row(entry: &Entry, opening: bool) -> TrayRow {
+    let in_doubt = entry.standing.as_ref().and_then(|standing| standing.in_doubt);
     let counts = entry.standing.as_ref().and_then(|standing| standing.counts.as_ref());
     let shares = counts.filter(|counts| counts.footprints > 0).map(|counts| {
         let share = |count: usize| count as f64 / counts.footprints as f64;
@@ -46,6 +47,7 @@ fn row(entry: &Entry, opening: bool) -> TrayRow {
             flagged: share(counts.flagged),
             no_flag: share(counts.no_flag),
             not_assessed: share(counts.not_assessed),
+            in_doubt: in_doubt.map(share),
         }
     });
     TrayRow { state: state(entry, opening), name: entry.name.clone(), shares }
