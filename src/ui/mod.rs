@@ -48,6 +48,8 @@ mod shown_layer;
 mod side;
 mod signing;
 mod signals;
+#[cfg(test)]
+mod snapshots;
 mod spectrum_window;
 mod spreading;
 mod strip;

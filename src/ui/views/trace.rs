@@ -28,6 +28,7 @@ struct TraceParts {
     unit: String,
     empty: String,
     words: String,
+    short: String,
     /// The cursor's spectrum first, then the pinned ones.
     spectra: Vec<(Option<char>, Values)>,
     /// The five levels of the envelope.
@@ -62,7 +63,8 @@ impl TraceParts {
         TraceParts {
             title: title(bench),
             quantity: quantity(bench),
-            words: channel_words(bench, &unit, app.theme.ascii),
+            words: channel_words(bench, &unit, true, app.theme.ascii),
+            short: channel_words(bench, &unit, false, app.theme.ascii),
             unit,
             empty: empty(bench),
             spectra: cursor.chain(pins).collect(),
@@ -113,7 +115,11 @@ impl TraceParts {
             x: bench.map_or((600.0, 2800.0), |bench| bench.window.shown()),
             y: None,
             least: bench.map_or(0.0, least),
-            channel: mark.map(|wavenumber| ChannelMark { wavenumber, words: &self.words }),
+            channel: mark.map(|wavenumber| ChannelMark {
+                wavenumber,
+                words: &self.words,
+                short: &self.short,
+            }),
             bands: &bands,
             empty: &self.empty,
             focused: app.focus() == Pane::Trace,
@@ -134,10 +140,10 @@ fn least(bench: &Bench) -> f64 {
 }
 
 fn title(bench: &Bench) -> String {
-    let footprint = format!("footprint {}", bench.position_words(bench.cursor));
+    let footprint = bench.position_words(bench.cursor);
     match bench.reference_words() {
         Some(reference) => format!("{footprint} less {reference}"),
-        None => footprint,
+        None => format!("footprint {footprint}"),
     }
 }
 
@@ -188,10 +194,13 @@ fn segments<'a>(channels: &'a Channels, bands: &'a [Vec<f64>]) -> Vec<Segment<'a
 }
 
 /// `900.31 cm-1 · 11.107 µm · 287.43 K`
-fn channel_words(bench: &Bench, unit: &str, ascii: bool) -> String {
+fn channel_words(bench: &Bench, unit: &str, with_length: bool, ascii: bool) -> String {
     let Some(wavenumber) = bench.channel_wavenumber() else { return String::new() };
     let (gap, micro) = if ascii { ("  ", "um") } else { (" · ", "µm") };
-    let mut words = format!("{wavenumber:.2} cm-1{gap}{:.3} {micro}", 1e4 / wavenumber);
+    let mut words = format!("{wavenumber:.2} cm-1");
+    if with_length {
+        words += &format!("{gap}{:.3} {micro}", 1e4 / wavenumber);
+    }
     if let Some(value) = trace_values::in_hand(bench) {
         let unit = if unit.is_empty() { String::new() } else { format!(" {unit}") };
         let value = match bench.look.quantity {

@@ -66,7 +66,7 @@ pub(super) fn draw(view: &FieldView<'_>, geometry: &Geometry, theme: &Theme, buf
     }
     for (x, line) in xs.iter().zip(&meridians) {
         write(
-            x.saturating_sub(line.label.len() as u16 / 2),
+            x.saturating_sub(line.label.len() as u16 / 2).max(geometry.area.x),
             geometry.area.bottom() - 1,
             &line.label,
         );
@@ -115,7 +115,7 @@ fn put_sign(
     let is_empty = dots.iter().all(|dot| *dot == Dot::Nothing);
     let Some(cell) = buffer.cell_mut(at) else { return };
     // Signs of flags and of the selection say more.
-    let is_signed = !matches!(cell.symbol(), " " | "▀" | "▄" | "│" | "─" | "|" | "-" | "+");
+    let is_signed = !matches!(cell.symbol(), " " | "▀" | "▄" | "│" | "─" | "┼" | "|" | "-" | "+");
     if is_empty {
         set_sign(sign, theme.style(Tone::Faint), None, cell);
     } else if everywhere && !is_signed {

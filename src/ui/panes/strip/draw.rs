@@ -19,6 +19,9 @@ struct Plot {
     values: Vec<(f64, String)>,
 }
 
+/// The widest bar, in columns of dots.
+const WIDEST: usize = 12;
+
 /// How a span is filled: a pattern, so that what lies in front of it stays readable.
 struct Fill {
     sign: char,
@@ -113,11 +116,14 @@ impl Plot {
         Some(self.area.x + (column as u16).min(self.area.width - 1))
     }
 
-    /// The columns of dots of a group, with one left free after it where there is room.
+    /// The columns of dots of a group: all that it has, with one left free after it where there is
+    /// room, but no more than can be taken in as one bar.
     fn dots_of(group: usize, count: usize, columns: usize) -> std::ops::Range<usize> {
         let edge = |group: usize| group * columns / count;
         let (from, to) = (edge(group), edge(group + 1).max(edge(group) + 1));
-        if to - from > 3 { from..to - 1 } else { from..to }
+        let width = if to - from > 3 { to - from - 1 } else { to - from };
+        let spare = width.saturating_sub(WIDEST);
+        from + spare / 2..from + spare / 2 + width - spare
     }
 
     /// One span in each group. Where several groups share a column their spans lie over one another,

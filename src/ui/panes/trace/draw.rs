@@ -52,6 +52,7 @@ pub fn wavenumber_at(view: &TraceView<'_>, area: Rect, column: u16, row: u16) ->
 fn titles(view: &TraceView<'_>, width: u16, ascii: bool) -> (String, String) {
     let room = usize::from(width).saturating_sub(" Trace ".len() + 4);
     let words = view.channel.map_or("", |channel| channel.words);
+    let short = view.channel.map_or("", |channel| channel.short);
     // A long unit finds no room above the values; it may stand behind the value already.
     let is_said = view.unit.width() <= UNIT || words.ends_with(view.unit);
     let unit = if is_said { "" } else { view.unit };
@@ -60,10 +61,13 @@ fn titles(view: &TraceView<'_>, width: u16, ascii: bool) -> (String, String) {
         said.join(", ")
     };
     let gap = if words.is_empty() { 0 } else { 4 };
-    let title = [parts([view.title, view.quantity, unit]), parts([view.title, "", unit])]
+    let whole = parts([view.title, view.quantity, unit]);
+    let brief = parts([view.title, "", unit]);
+    let (title, words) = [(whole, words), (brief, words)]
         .into_iter()
-        .find(|title| title.width() + gap + words.width() <= room)
-        .unwrap_or_else(|| view.title.to_string());
+        .chain([(view.title.to_string(), words), (view.title.to_string(), short)])
+        .find(|(title, words)| title.width() + gap + words.width() <= room)
+        .unwrap_or_else(|| (view.title.to_string(), if short.is_empty() { words } else { short }));
     let words = cut(words, room.saturating_sub(gap), ascii);
     let title = cut(&title, room.saturating_sub(gap + words.width()), ascii);
     (title, words)
@@ -194,7 +198,7 @@ mod tests {
         let curves = [curve(None, &[(&[600.0, 1000.0], &[290.0, 290.0])])];
         let mut view = view(&curves);
         let words = "900.00 cm-1 · 11.111 µm · 290.00 K";
-        view.channel = Some(ChannelMark { wavenumber: 900.0, words });
+        view.channel = Some(ChannelMark { wavenumber: 900.0, words, short: "" });
         let mut screen = Screen::new(70, 9);
         draw(&view, &THEME, screen.area(), &mut screen.buffer);
         let lines = screen.lines();
@@ -213,14 +217,16 @@ mod tests {
         view.title = "line 12, position 3";
         view.quantity = "brightness temperature";
         let words = "900.00 cm-1 · 290.00 K";
-        view.channel = Some(ChannelMark { wavenumber: 900.0, words });
+        view.channel =
+            Some(ChannelMark { wavenumber: 900.0, words, short: "900.00 cm-1 · 290 K" });
         for (width, line) in [
             (
                 80,
                 "─ Trace line 12, position 3, brightness temperature ─── 900.00 cm-1 · 290.00 K ─",
             ),
             (60, "─ Trace line 12, position 3 ─────── 900.00 cm-1 · 290.00 K ─"),
-            (46, "─ Trace line 12,… ─── 900.00 cm-1 · 290.00 K ─"),
+            (54, "─ Trace line 12, position 3 ──── 900.00 cm-1 · 290 K ─"),
+            (46, "─ Trace line 12, po… ─── 900.00 cm-1 · 290 K ─"),
         ] {
             let mut screen = Screen::new(width, 9);
             draw(&view, &THEME, screen.area(), &mut screen.buffer);
@@ -293,7 +299,7 @@ mod tests {
                 view.x = range;
                 view.y = values;
                 view.bands = &bands;
-                view.channel = Some(ChannelMark { wavenumber: near, words: "words" });
+                view.channel = Some(ChannelMark { wavenumber: near, words: "words", short: "" });
                 let mut screen = Screen::new(width, height);
                 let area = Rect::new(x, y, width, height);
                 draw(&view, &Theme { ascii, ..THEME }, area, &mut screen.buffer);

@@ -100,6 +100,8 @@ pub struct ChannelMark<'a> {
     pub wavenumber: f64,
     /// Its exact value in words: "900.31 cm-1 · 11.107 µm · 287.43 K".
     pub words: &'a str,
+    /// The same without what can be left out where there is little room; may be empty.
+    pub short: &'a str,
 }
 
 /// An absorption band's name and extent.
