@@ -29,6 +29,7 @@ mod surroundings;
 mod synth;
 mod table;
 mod tabulate;
+mod train;
 
 use std::process::ExitCode;
 
@@ -59,6 +60,8 @@ enum Command {
     Spectrum(spectrum::Arguments),
     /// Run the screening tests over granules, write their decisions into ledgers.
     Screen(screen::Arguments),
+    /// Find what the spectra of granules are made of, for the test of unusual ones.
+    Train(train::Arguments),
     /// Print a rulebook with its sources, or find its mistakes.
     Rules(rules::Arguments),
     /// Write CF flag masks or footprint lists from the ledgers.
@@ -107,6 +110,7 @@ fn run(command: Command) -> anyhow::Result<Exit> {
         Command::Tabulate(arguments) => tabulate::run(arguments),
         Command::Spectrum(arguments) => spectrum::run(arguments),
         Command::Screen(arguments) => screen::run(arguments),
+        Command::Train(arguments) => train::run(arguments),
         Command::Rules(arguments) => rules::run(arguments),
         Command::Export(arguments) => export::run(arguments),
         Command::Planck(arguments) => planck::run(arguments),

@@ -16,7 +16,7 @@ use super::instrument::{instrument, instrument_words, write_spectrum_evidence};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
 use crate::flags::{Author, Campaign, CampaignError, QualityMap};
-use crate::review::{Producer, Record, Recorded, Review, rulebook_of};
+use crate::review::{Producer, Record, Recorded, Review, read_bases, rulebook_of};
 use crate::screening::{Evidence, Rulebook, Screened, TestEvidence, Verdict};
 use crate::system::{Cancel, clean_text};
 
@@ -78,23 +78,23 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let quality = quality(&arguments)?;
     let opening = arguments.reading.opening()?;
     let heights = arguments.heights.method()?;
+    let open = |file: &Path| -> anyhow::Result<Review> {
+        let review = Review::open(&opening, file)?.heeding(&quality).taking(heights.clone());
+        let bases = read_bases(&arguments.campaign, review.granule(), &opening)?;
+        Ok(review.knowing(bases))
+    };
     if let Some(position) = &arguments.explain {
         let position = indices("--explain", position)?;
         let [file] = &files[..] else {
             return Err(UsageError("--explain takes one file".into()).into());
         };
-        let review = Review::open(&opening, file)?.heeding(&quality).taking(heights);
-        return explain(&review, file, &rulebook, &position, arguments.json);
+        return explain(&open(file)?, file, &rulebook, &position, arguments.json);
     }
     let desk = if arguments.dry_run { None } else { Some(desk(&arguments, &rulebook)?) };
     let mut failed = 0;
     let mut entries = Vec::new();
     for file in &files {
-        let review = Review::open(&opening, file)
-            .map(|review| review.heeding(&quality).taking(heights.clone()));
-        let outcome = review
-            .map_err(anyhow::Error::from)
-            .and_then(|review| one_file(&review, &rulebook, desk.as_ref()));
+        let outcome = open(file).and_then(|review| one_file(&review, &rulebook, desk.as_ref()));
         failed += usize::from(outcome.is_err());
         tell(file, &outcome, arguments.json)?;
         if arguments.json {

@@ -8,6 +8,7 @@
 mod cases;
 mod adopting;
 mod alike;
+mod basis_file;
 mod exporting;
 mod many_spectra;
 mod producer;
@@ -26,6 +27,7 @@ mod verbs;
 
 pub use adopting::{ThresholdChange, adopt_threshold};
 pub use alike::Measure;
+pub use basis_file::{BasisFileError, basis_path, read_bases, write_bases};
 pub use cases::Case;
 pub use exporting::ExportedBy;
 pub use many_spectra::ManySpectra;

@@ -11,6 +11,7 @@ use crate::layers::{
     Expression, GranuleNames, Judgements, Kept, Layer, Mistake, channels_needed, evaluate_all,
 };
 use crate::screening::health::examine;
+use crate::screening::unusual::SavedBases;
 use crate::screening::{CloudHeight, Rulebook, Screened, screen};
 use crate::system::Cancel;
 
@@ -23,6 +24,7 @@ pub struct Review {
     tested: Mutex<Option<Arc<Screened>>>,
     producer: Producer,
     heights: Arc<CloudHeight>,
+    bases: Option<SavedBases>,
 }
 
 impl Review {
@@ -38,7 +40,15 @@ impl Review {
     pub fn of(granule: Granule) -> Review {
         let cube = granule.cube();
         let (kept, producer) = (Kept::default(), Producer::default());
-        Review { granule, cube, kept, tested: Mutex::default(), producer, heights: Arc::default() }
+        Review {
+            granule,
+            cube,
+            kept,
+            tested: Mutex::default(),
+            producer,
+            heights: Arc::default(),
+            bases: None,
+        }
     }
 
     /// The same, with the producer's word on quality taken as a campaign says: tests leave out the
@@ -51,6 +61,12 @@ impl Review {
     /// The same, with another method for cloud height than that on standard atmospheres.
     pub fn taking(mut self, heights: Arc<CloudHeight>) -> Review {
         self.heights = heights;
+        self
+    }
+
+    /// The same, with spectra held against components of other granules.
+    pub fn knowing(mut self, bases: Option<SavedBases>) -> Review {
+        self.bases = bases;
         self
     }
 
@@ -88,7 +104,7 @@ impl Review {
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
         self.granule.fill(cancel, &mut |_| {})?;
         let screened = self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))?;
-        let examined = examine(&self.granule, &rulebook.health, cancel)?;
+        let examined = examine(&self.granule, &rulebook.health, self.bases.as_ref(), cancel)?;
         Ok(Screened { examined: Some(examined), ..screened })
     }
 

@@ -43,4 +43,4 @@ pub use planck_forms::{
 };
 pub use ringing::{Ringing, RingingWindows};
 pub use robust::{centre_and_deviation, deviation_from_zero, median, running_median};
-pub use shift::{SpectralShift, spectral_shift};
+pub use shift::{ShiftReference, SpectralShift};

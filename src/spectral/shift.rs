@@ -1,7 +1,5 @@
 //! Spectral shift of one spectrum against another, by cross-correlation.
 
-use std::f64::consts::PI;
-
 /// How far a spectrum's wavenumbers are off.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct SpectralShift {
@@ -17,65 +15,78 @@ pub struct SpectralShift {
 const FURTHEST: f64 = 50.0;
 /// Distance between shifts that are tried, ppm.
 const STEP: f64 = 5.0;
+const STEPS: usize = (2.0 * FURTHEST / STEP) as usize;
 /// What is smooth over this much is background, cm-1.
 const BACKGROUND: f64 = 4.0;
 /// Channels to either side that a value between channels is made from.
 const REACH: usize = 12;
-/// Shape of the taper over them; the larger, the smoother.
-const TAPER: f64 = 6.0;
 /// With fewer channels nothing is said.
 const FEWEST: usize = 12;
 
-/// The shift of `spectrum` against `reference`, both over the same ascending `wavenumbers` (cm-1)
-/// without a gap, in any unit; `noise` is the deviation of the spectrum's values in that unit. `None`
-/// where there are too few channels, or no lines.
+/// A reference that spectra are held against.
 ///
 /// The smooth background is taken off both; the reference is resampled at `nu (1 - s)` for shifts s
 /// from -50 to 50 ppm; the correlation of each with the spectrum is taken, and a parabola through the
 /// best three gives the shift. Precision: `1 / sqrt(sum ((nu dR/dnu) / noise)^2)`, the bound of Cramer
 /// and Rao for independent noise [Kay 1993].
-pub fn spectral_shift(
-    wavenumbers: &[f64],
-    reference: &[f64],
-    spectrum: &[f64],
-    noise: &[f64],
-) -> Option<SpectralShift> {
-    let count = wavenumbers.len();
-    if count < FEWEST + 2 * REACH {
-        return None;
+#[derive(Debug, Clone)]
+pub struct ShiftReference {
+    wavenumbers: Vec<f64>,
+    /// The lines of the reference at each shift.
+    shifted: Vec<Vec<f64>>,
+}
+
+impl ShiftReference {
+    /// From a spectrum over ascending `wavenumbers` (cm-1) without a gap, in any unit; `None` where
+    /// there are too few channels.
+    pub fn new(wavenumbers: &[f64], reference: &[f64]) -> Option<Self> {
+        if wavenumbers.len() < FEWEST + 2 * REACH {
+            return None;
+        }
+        let at_shift = |step: usize| {
+            let shift = 1e-6 * ppm(step);
+            let all = 0..wavenumbers.len();
+            let shifted: Vec<f64> =
+                all.map(|at| resampled(wavenumbers, reference, at, shift)).collect();
+            without_background(wavenumbers, &shifted)
+        };
+        let shifted = (0..=STEPS).map(at_shift).collect();
+        Some(Self { wavenumbers: wavenumbers.to_vec(), shifted })
     }
-    let inner = REACH..count - REACH;
-    let lines = without_background(wavenumbers, spectrum);
-    let at_shift = |ppm: f64| {
-        let shifted: Vec<f64> =
-            (0..count).map(|at| resampled(wavenumbers, reference, at, 1e-6 * ppm)).collect();
-        without_background(wavenumbers, &shifted)
-    };
-    let steps = (2.0 * FURTHEST / STEP) as usize;
-    let shift = |step: usize| -FURTHEST + STEP * step as f64;
-    let correlations: Vec<f64> = (0..=steps)
-        .map(|step| correlation(&at_shift(shift(step))[inner.clone()], &lines[inner.clone()]))
-        .collect();
-    let best = (0..=steps).max_by(|a, b| correlations[*a].total_cmp(&correlations[*b]))?;
-    let top = best.clamp(1, steps - 1);
-    let (before, here, behind) = (correlations[top - 1], correlations[top], correlations[top + 1]);
-    let bend = before - 2.0 * here + behind;
-    let offset = if bend < 0.0 { 0.5 * (before - behind) / bend } else { 0.0 };
-    let ppm = shift(top) + STEP * offset.clamp(-1.0, 1.0);
-    let (warmer, colder) = (at_shift(STEP), at_shift(-STEP));
-    let information: f64 = inner
-        .map(|at| {
-            // The change per unit of relative shift is nu times the slope.
-            let change = (warmer[at] - colder[at]) / (2e-6 * STEP);
-            (change / noise[at]).powi(2)
+
+    /// The shift of a spectrum over the same channels, in the same unit; `noise` is the deviation of
+    /// its values. `None` where there are no lines.
+    pub fn shift_of(&self, spectrum: &[f64], noise: &[f64]) -> Option<SpectralShift> {
+        let inner = REACH..self.wavenumbers.len() - REACH;
+        let lines = without_background(&self.wavenumbers, spectrum);
+        let like = |shifted: &Vec<f64>| correlation(&shifted[inner.clone()], &lines[inner.clone()]);
+        let correlations: Vec<f64> = self.shifted.iter().map(like).collect();
+        let best = (0..=STEPS).max_by(|a, b| correlations[*a].total_cmp(&correlations[*b]))?;
+        let top = best.clamp(1, STEPS - 1);
+        let (before, here, behind) =
+            (correlations[top - 1], correlations[top], correlations[top + 1]);
+        let bend = before - 2.0 * here + behind;
+        let offset = if bend < 0.0 { 0.5 * (before - behind) / bend } else { 0.0 };
+        let (warmer, colder) = (&self.shifted[STEPS / 2 + 1], &self.shifted[STEPS / 2 - 1]);
+        let information: f64 = inner
+            .map(|at| {
+                // The change per unit of relative shift is nu times the slope.
+                let change = (warmer[at] - colder[at]) / (2e-6 * STEP);
+                (change / noise[at]).powi(2)
+            })
+            .sum();
+        let deviation = 1e6 / information.sqrt();
+        (here.is_finite() && deviation.is_finite()).then_some(SpectralShift {
+            ppm: ppm(top) + STEP * offset.clamp(-1.0, 1.0),
+            correlation: here,
+            deviation,
         })
-        .sum();
-    let deviation = 1e6 / information.sqrt();
-    (here.is_finite() && deviation.is_finite()).then_some(SpectralShift {
-        ppm,
-        correlation: here,
-        deviation,
-    })
+    }
+}
+
+/// The shift of a step, ppm.
+fn ppm(step: usize) -> f64 {
+    STEP * step as f64 - FURTHEST
 }
 
 /// The reference where channel `at` looks when wavenumbers are off by `shift` (relative): a sum over
@@ -86,36 +97,26 @@ fn resampled(wavenumbers: &[f64], values: &[f64], at: usize, shift: f64) -> f64 
     let spacing = (wavenumbers[high] - wavenumbers[low]) / (high - low) as f64;
     // How many channels further down it looks.
     let offset = -wavenumbers[at] * shift / spacing;
+    if offset.abs() < 1e-12 {
+        return values[at];
+    }
     let range = at.saturating_sub(REACH)..(at + REACH + 1).min(count);
     let (mut sum, mut weights) = (0.0, 0.0);
     for other in range {
         let distance = other as f64 - at as f64 - offset;
-        let weight = sinc(distance) * taper(distance / (REACH as f64 + 1.0));
+        // sin(pi (k - offset)) is the same for all but its sign, and drops out with the sum.
+        let sign = if (other + at).is_multiple_of(2) { 1.0 } else { -1.0 };
+        let weight = sign * taper(distance / (REACH as f64 + 1.0)) / distance;
         sum += weight * values[other];
         weights += weight;
     }
     sum / weights
 }
 
-fn sinc(x: f64) -> f64 {
-    if x.abs() < 1e-12 { 1.0 } else { (PI * x).sin() / (PI * x) }
-}
-
-/// Kaiser's taper from the middle (0) to the end (1).
+/// A smooth taper from the middle (0) to the end (1).
 fn taper(place: f64) -> f64 {
-    let inside = (1.0 - place * place).max(0.0).sqrt();
-    bessel_i0(TAPER * inside) / bessel_i0(TAPER)
-}
-
-/// The modified Bessel function of order zero, by its power series (Abramowitz & Stegun 9.6.12).
-fn bessel_i0(x: f64) -> f64 {
-    let quarter = 0.25 * x * x;
-    let (mut term, mut sum) = (1.0, 1.0);
-    for k in 1..40 {
-        term *= quarter / f64::from(k * k);
-        sum += term;
-    }
-    sum
+    let inside = (1.0 - place * place).max(0.0);
+    inside * inside
 }
 
 /// Values less their mean over a few cm-1 around each.
@@ -162,6 +163,10 @@ mod tests {
         background - lines
     }
 
+    fn shift(nu: &[f64], reference: &[f64], of: &[f64], noise: &[f64]) -> Option<SpectralShift> {
+        ShiftReference::new(nu, reference)?.shift_of(of, noise)
+    }
+
     /// Spacing, line width, and how far the shift may be off as a share of itself: the interferometer
     /// samples lines 1.56 cm-1 apart with 2.5 channels each, close to the least that is possible.
     const CASES: [(f64, f64, f64); 2] = [(0.625, 1.135, 0.03), (0.3, 0.6, 0.01)];
@@ -176,7 +181,7 @@ mod tests {
             for ppm in [-40.0, -10.0, 0.0, 3.0, 25.0] {
                 let shifted: Vec<f64> =
                     wavenumbers.iter().map(|nu| spectrum(nu * (1.0 - 1e-6 * ppm), width)).collect();
-                let found = spectral_shift(&wavenumbers, &reference, &shifted, &noise).unwrap();
+                let found = shift(&wavenumbers, &reference, &shifted, &noise).unwrap();
                 assert!((found.ppm - ppm).abs() < error * ppm.abs() + 0.05, "{ppm}: {found:?}");
                 assert!(found.correlation > 0.999);
             }
@@ -201,7 +206,7 @@ mod tests {
                         value + deviation * normal
                     })
                     .collect();
-                spectral_shift(&wavenumbers, &reference, &noisy, &[deviation; 128]).unwrap()
+                shift(&wavenumbers, &reference, &noisy, &[deviation; 128]).unwrap()
             })
             .collect();
         let spread = (found.iter().map(|one| one.ppm.powi(2)).sum::<f64>() / 60.0).sqrt();
@@ -216,7 +221,7 @@ mod tests {
     fn without_lines_or_channels_there_is_no_shift() {
         let wavenumbers: Vec<f64> = (0..60).map(|at| 700.0 + f64::from(at)).collect();
         let flat = vec![5.0; 60];
-        assert_eq!(spectral_shift(&wavenumbers, &flat, &flat, &[0.1; 60]), None);
-        assert_eq!(spectral_shift(&wavenumbers[..20], &flat[..20], &flat[..20], &[0.1; 20]), None);
+        assert_eq!(shift(&wavenumbers, &flat, &flat, &[0.1; 60]), None);
+        assert_eq!(shift(&wavenumbers[..20], &flat[..20], &flat[..20], &[0.1; 20]), None);
     }
 }

@@ -6,7 +6,9 @@ use std::time::{Duration, Instant};
 
 use crate::flags::read_ledgers;
 use crate::granule::{GranuleError, VariableRole};
-use crate::review::{ExportedBy, Record, ReferenceSpectrum, Review, adopt_threshold, rulebook_of};
+use crate::review::{
+    ExportedBy, Record, ReferenceSpectrum, Review, adopt_threshold, read_bases, rulebook_of,
+};
 use crate::screening::Screened;
 use crate::system::{Cancel, clean_text};
 use crate::tray::Standing;
@@ -54,7 +56,13 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         }
         Job::Open { request, path } => {
             let found = Review::open(&outside.opening, path);
-            let found = found.map(|review| review.heeding(&outside.campaign.settings().quality));
+            let found = found.map(|review| {
+                let review = review.heeding(&outside.campaign.settings().quality);
+                let folder = outside.campaign.folder();
+                // Without saved components spectra are held against the granule's own, and it says so.
+                let bases = read_bases(folder, review.granule(), &outside.opening);
+                review.knowing(bases.unwrap_or_default())
+            });
             let found = found.map(Arc::new).map_err(in_words);
             send(Answer::Opened { request: *request, found });
         }

@@ -5,6 +5,7 @@
 mod describe;
 mod export;
 mod hostile;
+mod instrument;
 mod layers;
 mod layout;
 mod lending;

@@ -32,34 +32,39 @@ pub struct DetectorNumbers {
     pub bias_deviation: f64,
 }
 
-/// Brightness temperature of a band's most transparent channels, K, relative to the granule's mean,
-/// for each footprint; NaN where a value is missing.
-pub fn window_signal(readings: &BandReadings<'_>, sample: &Sample, grid: &ScanGrid) -> Vec<f64> {
-    let rows = &sample.rows;
-    let count = rows.count() as f64;
-    let means = (0..rows.channels.len()).map(|at| rows.column(at).sum::<f64>() / count);
-    let mut warmest: Vec<(f64, usize, f64)> = means
-        .zip(rows.wavenumbers.iter().zip(&rows.channels))
-        .map(|(mean, (nu, channel))| (brightness_temperature_or_nan(*nu, mean), *channel, mean))
-        .filter(|one| one.0.is_finite())
-        .collect();
-    warmest.sort_by(|one, next| next.0.total_cmp(&one.0));
-    warmest.truncate(WINDOW_CHANNELS);
-    let weights: Vec<(usize, f64, f64)> = warmest
-        .into_iter()
-        .map(|(kelvin, channel, mean)| {
+/// The channels in which a band sees deepest, and how their radiances become temperature.
+#[derive(Debug, Clone)]
+pub struct Window {
+    /// Channel, its mean radiance, kelvin per radiance.
+    weights: Vec<(usize, f64, f64)>,
+}
+
+impl Window {
+    /// That of a band: the channels that are the warmest on average.
+    pub fn of(readings: &BandReadings<'_>, sample: &Sample) -> Self {
+        let rows = &sample.rows;
+        let count = rows.count() as f64;
+        let means = (0..rows.channels.len()).map(|at| rows.column(at).sum::<f64>() / count);
+        let mut warmest: Vec<(f64, usize, f64)> = means
+            .zip(rows.wavenumbers.iter().zip(&rows.channels))
+            .map(|(mean, (nu, channel))| (brightness_temperature_or_nan(*nu, mean), *channel, mean))
+            .filter(|one| one.0.is_finite())
+            .collect();
+        warmest.sort_by(|one, next| next.0.total_cmp(&one.0));
+        warmest.truncate(WINDOW_CHANNELS);
+        let weight = |(kelvin, channel, mean): (f64, usize, f64)| {
             let nu = readings.band.axis.wavenumbers()[channel];
             (channel, mean, 1.0 / planck_slope(nu, kelvin))
-        })
-        .collect();
-    let all = (0..grid.count()).into_par_iter();
-    let signal = all.map_init(Vec::new, |buffer, footprint| {
-        readings.radiances(footprint, buffer);
-        let kelvin =
-            weights.iter().map(|(channel, mean, weight)| (buffer[*channel] - mean) * weight);
-        kelvin.sum::<f64>() / weights.len() as f64
-    });
-    signal.collect()
+        };
+        Self { weights: warmest.into_iter().map(weight).collect() }
+    }
+
+    /// What a spectrum is warmer by than the mean of the sample, K; NaN where a value is missing.
+    pub fn signal(&self, radiances: &[f64]) -> f64 {
+        let kelvin = self.weights.iter();
+        let sum: f64 = kelvin.map(|(at, mean, weight)| (radiances[*at] - mean) * weight).sum();
+        sum / self.weights.len() as f64
+    }
 }
 
 /// The detectors in numbers, and what is wrong with them.

@@ -3,17 +3,17 @@
 use rayon::prelude::*;
 
 use super::channels::{ChannelNoise, channel_noise, noisy_channels, popping_channels};
-use super::detectors::{DetectorNumbers, detectors, sweep, sweep_difference, window_signal};
+use super::detectors::{DetectorNumbers, Window, detectors, sweep, sweep_difference};
 use super::finding::{Check, Finding, Limit, Subject};
 use super::grid::ScanGrid;
 use super::limits::HealthLimits;
 use super::readings::{BandReadings, Spectra};
 use super::repeats::repeated_spectra;
-use super::sample::Sample;
-use super::shift::{DetectorShift, detector_shifts, shifted_detectors};
+use super::sample::{SAMPLE, Sample};
+use super::shift::{DetectorShift, Lines, detector_shifts, shifted_detectors};
 use super::spectra::{SpectraCheck, SpectrumReading};
 use crate::granule::{Apodisation, Granule, GranuleError};
-use crate::screening::unusual::{Basis, Fitted, fit};
+use crate::screening::unusual::{Basis, Fitted, Rows, SavedBases, fit, judged_by};
 use crate::spectral::{HAMMING_NOISE_FACTOR, median};
 use crate::system::Cancel;
 
@@ -98,27 +98,61 @@ pub struct UnusualSpectrum {
     pub channels: Vec<(f64, f64)>,
 }
 
-/// Examines all bands. What is not in memory is read, more than once.
+/// Examines all bands. What is not in memory is read, more than once. Components are those `saved` of
+/// other granules, if they are given, or else the granule's own.
 ///
 /// # Errors
 /// The file can't be read, or `cancel` was asked for.
 pub fn examine(
     granule: &Granule,
     limits: &HealthLimits,
+    saved: Option<&SavedBases>,
     cancel: &Cancel,
 ) -> Result<Examined, GranuleError> {
     let spectra = Spectra::new(granule, cancel);
-    let examined = granule.at_work(|| examine_all(granule, &spectra, limits));
+    let examined = granule.at_work(|| examine_all(granule, &spectra, limits, saved));
     spectra.fault()?;
     Ok(examined)
 }
 
-fn examine_all(granule: &Granule, spectra: &Spectra<'_>, limits: &HealthLimits) -> Examined {
+/// The first spectra of each band, about `most`, that components can be found in, with the first guess
+/// of their noise, by the name of the band.
+///
+/// # Errors
+/// The file can't be read, or `cancel` was asked for.
+pub fn training_rows(
+    granule: &Granule,
+    limits: &HealthLimits,
+    most: usize,
+    cancel: &Cancel,
+) -> Result<Vec<(String, Rows, Vec<f64>)>, GranuleError> {
+    let spectra = Spectra::new(granule, cancel);
+    let grid = ScanGrid::of(granule.footprints());
+    let rows = granule.at_work(|| {
+        let take = |readings: BandReadings<'_>| {
+            let sample = Sample::take(&readings, &grid, limits, most);
+            (readings.band.name.clone(), sample.rows, sample.spatial_noise)
+        };
+        BandReadings::of(&spectra).into_iter().map(take).collect()
+    });
+    spectra.fault()?;
+    Ok(rows)
+}
+
+fn examine_all(
+    granule: &Granule,
+    spectra: &Spectra<'_>,
+    limits: &HealthLimits,
+    saved: Option<&SavedBases>,
+) -> Examined {
     let grid = ScanGrid::of(granule.footprints());
     let readings = BandReadings::of(spectra);
     let bands: Vec<BandWork<'_>> = readings
         .par_iter()
-        .map(|readings| BandWork::of(*readings, nedn(granule, readings, &grid), &grid, limits))
+        .map(|readings| {
+            let nedn = nedn(granule, readings, &grid);
+            BandWork::of(*readings, nedn, saved, &grid, limits)
+        })
         .collect();
     let mut findings: Vec<Finding> =
         bands.iter().flat_map(|band| band.findings.iter().cloned()).collect();
@@ -169,6 +203,24 @@ fn nedn(granule: &Granule, readings: &BandReadings<'_>, grid: &ScanGrid) -> Opti
     Some((0..readings.band.channels()).map(of_channel).collect())
 }
 
+/// The components of a band: saved ones as far as the sample has their channels, else its own.
+fn components(
+    readings: &BandReadings<'_>,
+    sample: &Sample,
+    saved: Option<&SavedBases>,
+) -> (Option<Fitted>, BasisOrigin) {
+    if let Some(saved) = saved
+        && let Some(basis) = saved.of_band(&readings.band.name)
+        && let Some(fitted) = judged_by(basis.restricted(&sample.rows.channels), &sample.rows)
+    {
+        return (Some(fitted), BasisOrigin::Saved(saved.file.clone()));
+    }
+    match fit(&sample.rows, &sample.spatial_noise) {
+        Some(fitted) => (Some(fitted), BasisOrigin::Own),
+        None => (None, BasisOrigin::None),
+    }
+}
+
 /// A band with what was worked out on the way.
 struct BandWork<'g> {
     readings: BandReadings<'g>,
@@ -187,11 +239,12 @@ impl<'g> BandWork<'g> {
     fn of(
         readings: BandReadings<'g>,
         nedn: Option<Vec<f64>>,
+        saved: Option<&SavedBases>,
         grid: &ScanGrid,
         limits: &HealthLimits,
     ) -> Self {
-        let sample = Sample::take(&readings, grid, limits);
-        let fitted = fit(&sample.rows, &sample.spatial_noise);
+        let sample = Sample::take(&readings, grid, limits, SAMPLE);
+        let (fitted, origin) = components(&readings, &sample, saved);
         let mut findings = sample.findings.clone();
         let mut noise = Vec::new();
         if let Some(fitted) = &fitted {
@@ -199,43 +252,38 @@ impl<'g> BandWork<'g> {
             findings.extend(noisy_channels(&readings, &noise, &fitted.set_aside, limits));
             findings.extend(popping_channels(&readings, &sample, fitted, grid, limits));
         }
-        let shifts = match &fitted {
-            Some(fitted) => detector_shifts(&readings, &sample, fitted, grid),
-            None => Vec::new(),
-        };
-        findings.extend(shifted_detectors(&readings, &shifts, limits));
-        let (mut of_detectors, mut sweep_numbers) = (Vec::new(), None);
-        if sample.rows.count() > 0 {
-            let signal = window_signal(&readings, &sample, grid);
-            let (numbers, found) =
-                detectors(&readings, &sample, fitted.as_ref(), &signal, grid, limits);
-            of_detectors = numbers;
-            findings.extend(found);
-            sweep_numbers = sweep_difference(&signal, grid);
-            findings.extend(sweep(&readings, &signal, grid, limits));
-        }
         let basis = fitted.as_ref().map(|fitted| &fitted.basis);
         let limit = basis.map_or(f64::NAN, |basis| basis.limit(limits.unusual));
+        let lines = fitted.as_ref().and_then(|fitted| Lines::of(&sample, fitted, grid));
         let check = SpectraCheck {
             readings,
             basis,
             spike_scale: spike_scale(&sample, fitted.as_ref(), &findings),
             excused: &sample.excused,
+            window: &Window::of(&readings, &sample),
+            lines: lines.as_ref(),
             spike: limits.spike,
             unusual: limit,
         };
-        let spectra = check.all(grid);
+        let (spectra, sums) = check.all(grid);
+        let shifts = lines.as_ref().map_or(Vec::new(), |lines| detector_shifts(lines, &sums));
+        findings.extend(shifted_detectors(&readings, &shifts, limits));
+        let signal: Vec<f64> = spectra.iter().map(|spectrum| spectrum.window).collect();
+        let (of_detectors, found) =
+            detectors(&readings, &sample, fitted.as_ref(), &signal, grid, limits);
+        findings.extend(found);
+        findings.extend(sweep(&readings, &signal, grid, limits));
         let windows_limit = check.ringing_limit(limits.ringing);
         let nyquist = fitted.as_ref().map_or(f64::NAN, |one| one.shape.power(std::f64::consts::PI));
         let health = BandHealth {
             band: readings.number,
-            origin: if fitted.is_some() { BasisOrigin::Own } else { BasisOrigin::None },
+            origin,
             limit,
             scores: spectra.iter().map(|spectrum| spectrum.score).collect(),
             noise,
             has_nedn: nedn.is_some(),
             detectors: of_detectors,
-            sweep: sweep_numbers,
+            sweep: sweep_difference(&signal, grid),
             shifts,
             basis: fitted.map(|fitted| fitted.basis),
         };

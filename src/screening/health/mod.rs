@@ -16,7 +16,7 @@ mod spectra;
 
 pub use channels::ChannelNoise;
 pub use detectors::DetectorNumbers;
-pub use examine::{BandHealth, BasisOrigin, Examined, UnusualSpectrum, examine};
+pub use examine::{BandHealth, BasisOrigin, Examined, UnusualSpectrum, examine, training_rows};
 pub use finding::{Check, Finding, Subject};
 pub use grid::ScanGrid;
 pub use limits::{HealthLimits, LIMITS, LimitKind};

@@ -53,9 +53,14 @@ struct Raw {
 }
 
 impl Sample {
-    /// Takes the sample of a band.
-    pub fn take(readings: &BandReadings<'_>, grid: &ScanGrid, limits: &HealthLimits) -> Self {
-        let pairs = grid.pairs(SAMPLE);
+    /// Takes the sample of a band, about `most` spectra.
+    pub fn take(
+        readings: &BandReadings<'_>,
+        grid: &ScanGrid,
+        limits: &HealthLimits,
+        most: usize,
+    ) -> Self {
+        let pairs = grid.pairs(most);
         let footprints: Vec<usize> = pairs.iter().flat_map(|(one, other)| [*one, *other]).collect();
         let (channels, adjacent) = readings.channels();
         let values = footprints.par_iter().map_init(Vec::new, |buffer, footprint| {

@@ -8,7 +8,7 @@ use super::limits::HealthLimits;
 use super::readings::BandReadings;
 use super::sample::Sample;
 use crate::screening::unusual::Fitted;
-use crate::spectral::{SpectralShift, spectral_shift};
+use crate::spectral::{ShiftReference, SpectralShift};
 
 /// Stretches with lines of CO2 that are known well, cm-1.
 const STRETCHES: [(f64, f64); 3] = [(690.0, 765.0), (2190.0, 2260.0), (2375.0, 2400.0)];
@@ -29,40 +29,87 @@ pub struct DetectorShift {
 }
 
 /// Channels side by side with lines of CO2.
-struct Lines {
-    channels: Vec<usize>,
+#[derive(Debug, Clone)]
+pub struct Lines {
+    /// Places in the band.
+    pub channels: Vec<usize>,
     wavenumbers: Vec<f64>,
     noise: Vec<f64>,
+    /// Detectors that see something.
+    pub alive: Vec<usize>,
 }
 
-/// The shift of each detector that sees something; none for a band without lines of CO2 or with one
-/// detector.
-pub fn detector_shifts(
-    readings: &BandReadings<'_>,
-    sample: &Sample,
-    fitted: &Fitted,
-    grid: &ScanGrid,
-) -> Vec<DetectorShift> {
-    let alive: Vec<usize> =
-        (0..grid.detectors).filter(|one| !sample.dead_detectors.contains(one)).collect();
-    let Some(lines) = lines(sample, fitted).filter(|_| alive.len() > 1) else { return Vec::new() };
-    let parts = means(readings, &lines, &alive, grid);
-    let of_detector = |place: usize| {
-        let whole = total(&parts, place);
-        let (reference, count) = reference(&parts, alive.len());
-        let noise: Vec<f64> =
-            lines.noise.iter().map(|noise| noise / (count / alive.len() as f64).sqrt()).collect();
-        let shift = spectral_shift(&lines.wavenumbers, &reference, &whole, &noise)?;
-        let of_parts = parts.iter().filter_map(|part| {
-            let (reference, _) = self::reference(std::slice::from_ref(part), alive.len());
-            let own = total(std::slice::from_ref(part), place);
-            spectral_shift(&lines.wavenumbers, &reference, &own, &noise).map(|one| one.ppm)
-        });
-        let deviation = shift.deviation.max(deviation_of_mean(&of_parts.collect::<Vec<_>>()));
-        let SpectralShift { ppm, .. } = shift;
-        Some(DetectorShift { detector: alive[place], ppm, deviation })
+/// Sums over positions at which all detectors have all channels, so that all of them see the same
+/// ground: per detector and channel.
+#[derive(Debug, Clone, Default)]
+pub struct LineSums {
+    sums: Vec<f64>,
+    positions: f64,
+}
+
+impl LineSums {
+    /// Adds the values of one position: all channels of the first detector, then of the next. Those of
+    /// which something is missing are left out.
+    pub fn add(&mut self, values: &[f64]) {
+        if values.iter().all(|value| value.is_finite()) {
+            self.sums.resize(values.len(), 0.0);
+            self.positions += 1.0;
+            self.sums.iter_mut().zip(values).for_each(|(sum, value)| *sum += value);
+        }
+    }
+
+    fn join(mut self, other: &LineSums) -> Self {
+        self.sums.resize(self.sums.len().max(other.sums.len()), 0.0);
+        self.positions += other.positions;
+        self.sums.iter_mut().zip(&other.sums).for_each(|(sum, value)| *sum += value);
+        self
+    }
+
+    /// Mean spectrum of a detector, by its place among those that see something.
+    fn mean(&self, place: usize, channels: usize) -> Vec<f64> {
+        let sums = &self.sums[place * channels..][..channels];
+        sums.iter().map(|sum| sum / self.positions).collect()
+    }
+}
+
+/// The shift of each detector that sees something, from the sums of the scan lines.
+pub fn detector_shifts(lines: &Lines, of_scan_lines: &[LineSums]) -> Vec<DetectorShift> {
+    let parts: Vec<LineSums> = (0..PARTS)
+        .map(|part| {
+            let count = of_scan_lines.len();
+            let range = count * part / PARTS..count * (part + 1) / PARTS;
+            of_scan_lines[range].iter().fold(LineSums::default(), LineSums::join)
+        })
+        .filter(|part| part.positions > 0.0)
+        .collect();
+    let whole = parts.iter().fold(LineSums::default(), LineSums::join);
+    let all = shifts(lines, &whole);
+    let of_parts: Vec<Vec<Option<SpectralShift>>> =
+        parts.par_iter().map(|part| shifts(lines, part)).collect();
+    let detector = |(place, shift): (usize, Option<SpectralShift>)| {
+        let shift = shift?;
+        let between: Vec<f64> =
+            of_parts.iter().filter_map(|part| Some(part.get(place)?.as_ref()?.ppm)).collect();
+        let deviation = shift.deviation.max(deviation_of_mean(&between));
+        Some(DetectorShift { detector: lines.alive[place], ppm: shift.ppm, deviation })
     };
-    (0..alive.len()).into_par_iter().filter_map(of_detector).collect()
+    all.into_iter().enumerate().filter_map(detector).collect()
+}
+
+/// The shift of each detector against the mean of all.
+fn shifts(lines: &Lines, sums: &LineSums) -> Vec<Option<SpectralShift>> {
+    if sums.positions == 0.0 {
+        return Vec::new();
+    }
+    let (detectors, channels) = (lines.alive.len(), lines.channels.len());
+    let means: Vec<Vec<f64>> = (0..detectors).map(|place| sums.mean(place, channels)).collect();
+    let of_channel = |at: usize| means.iter().map(|mean| mean[at]).sum::<f64>() / detectors as f64;
+    let reference: Vec<f64> = (0..channels).map(of_channel).collect();
+    let noise: Vec<f64> = lines.noise.iter().map(|noise| noise / sums.positions.sqrt()).collect();
+    let Some(reference) = ShiftReference::new(&lines.wavenumbers, &reference) else {
+        return Vec::new();
+    };
+    means.iter().map(|mean| reference.shift_of(mean, &noise)).collect()
 }
 
 /// Shifts beyond the limit.
@@ -87,93 +134,41 @@ pub fn shifted_detectors(
         .collect()
 }
 
-/// The first stretch of which the band has enough channels without a gap.
-fn lines(sample: &Sample, fitted: &Fitted) -> Option<Lines> {
-    let rows = &sample.rows;
-    STRETCHES.iter().find_map(|(low, high)| {
-        let first = rows.wavenumbers.partition_point(|nu| nu < low);
-        let end = rows.wavenumbers.partition_point(|nu| nu <= high);
-        // The longest run without a gap or a channel that is given up.
-        let mut best = first..first;
-        let mut begin = first;
-        for at in first..end {
-            if at + 1 - begin > best.len() {
-                best = begin..at + 1;
+impl Lines {
+    /// The first stretch of which a band has enough channels without a gap; none where there is but
+    /// one detector.
+    pub fn of(sample: &Sample, fitted: &Fitted, grid: &ScanGrid) -> Option<Self> {
+        let rows = &sample.rows;
+        let alive: Vec<usize> =
+            (0..grid.detectors).filter(|one| !sample.dead_detectors.contains(one)).collect();
+        let found = STRETCHES.iter().find_map(|(low, high)| {
+            let first = rows.wavenumbers.partition_point(|nu| nu < low);
+            let end = rows.wavenumbers.partition_point(|nu| nu <= high);
+            // The longest run without a gap or a channel that is given up.
+            let mut best = first..first;
+            let mut begin = first;
+            for at in first..end {
+                if at + 1 - begin > best.len() {
+                    best = begin..at + 1;
+                }
+                if !rows.adjacent[at] {
+                    begin = at + 1;
+                }
             }
-            if !rows.adjacent[at] {
-                begin = at + 1;
-            }
-        }
-        (best.len() >= FEWEST_CHANNELS).then(|| Lines {
-            channels: rows.channels[best.clone()].to_vec(),
-            wavenumbers: rows.wavenumbers[best.clone()].to_vec(),
-            noise: fitted.noise[best].to_vec(),
+            (best.len() >= FEWEST_CHANNELS).then_some(best)
+        });
+        let found = found.filter(|_| alive.len() > 1)?;
+        Some(Self {
+            channels: rows.channels[found.clone()].to_vec(),
+            wavenumbers: rows.wavenumbers[found.clone()].to_vec(),
+            noise: fitted.noise[found].to_vec(),
+            alive,
         })
-    })
+    }
 }
 
 /// Channels that a shift needs, margins included.
 const FEWEST_CHANNELS: usize = 48;
-
-/// Sums of one part of the granule: per detector, per channel; and how many positions they are of.
-struct Part {
-    sums: Vec<Vec<f64>>,
-    positions: f64,
-}
-
-/// Positions at which all detectors have all channels, so that all of them see the same ground.
-fn means(
-    readings: &BandReadings<'_>,
-    lines: &Lines,
-    alive: &[usize],
-    grid: &ScanGrid,
-) -> Vec<Part> {
-    let parts = PARTS.min(grid.lines.max(1));
-    (0..parts)
-        .into_par_iter()
-        .map(|part| {
-            let (first, end) = (grid.lines * part / parts, grid.lines * (part + 1) / parts);
-            let mut sums = vec![vec![0.0; lines.channels.len()]; alive.len()];
-            let (mut positions, mut buffer) = (0.0, Vec::new());
-            for position in first * grid.positions..end * grid.positions {
-                let spectra: Vec<Vec<f64>> = alive
-                    .iter()
-                    .map(|detector| {
-                        readings.radiances(position * grid.detectors + detector, &mut buffer);
-                        lines.channels.iter().map(|channel| buffer[*channel]).collect()
-                    })
-                    .collect();
-                if spectra.iter().flatten().all(|value: &f64| value.is_finite()) {
-                    positions += 1.0;
-                    for (sums, spectrum) in sums.iter_mut().zip(spectra) {
-                        sums.iter_mut().zip(spectrum).for_each(|(sum, value)| *sum += value);
-                    }
-                }
-            }
-            Part { sums, positions }
-        })
-        .filter(|part| part.positions > 0.0)
-        .collect()
-}
-
-/// The mean spectrum of a detector over some parts.
-fn total(parts: &[Part], place: usize) -> Vec<f64> {
-    let positions: f64 = parts.iter().map(|part| part.positions).sum();
-    let channels = parts.first().map_or(0, |part| part.sums[place].len());
-    let sum = |channel: usize| parts.iter().map(|part| part.sums[place][channel]).sum::<f64>();
-    (0..channels).map(|channel| sum(channel) / positions).collect()
-}
-
-/// The mean spectrum of all detectors, and how many spectra it is of.
-fn reference(parts: &[Part], detectors: usize) -> (Vec<f64>, f64) {
-    let of_detectors: Vec<Vec<f64>> = (0..detectors).map(|place| total(parts, place)).collect();
-    let channels = of_detectors.first().map_or(0, Vec::len);
-    let mean = |channel: usize| {
-        of_detectors.iter().map(|spectrum| spectrum[channel]).sum::<f64>() / detectors as f64
-    };
-    let positions: f64 = parts.iter().map(|part| part.positions).sum();
-    ((0..channels).map(mean).collect(), positions * detectors as f64)
-}
 
 fn deviation_of_mean(values: &[f64]) -> f64 {
     let count = values.len() as f64;

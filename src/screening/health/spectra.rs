@@ -2,8 +2,10 @@
 
 use rayon::prelude::*;
 
+use super::detectors::Window;
 use super::grid::ScanGrid;
 use super::readings::BandReadings;
+use super::shift::{LineSums, Lines};
 use crate::screening::unusual::{Basis, ManyResiduals, score};
 use crate::spectral::{Ringing, RingingWindows};
 
@@ -25,6 +27,10 @@ pub struct SpectraCheck<'c> {
     pub spike_scale: Vec<f64>,
     /// Channels of the band that may be missing without being missed.
     pub excused: &'c [bool],
+    /// Where the band sees deepest.
+    pub window: &'c Window,
+    /// Lines that show a spectral shift, if the band has some.
+    pub lines: Option<&'c Lines>,
     /// Limits of a spike and of the score.
     pub spike: f64,
     /// Score from which on a spectrum is unusual.
@@ -44,6 +50,8 @@ pub struct SpectrumReading {
     pub ringing: Option<Ringing>,
     /// Channels of the band that stand out, with the noises that they do so by.
     pub spikes: Vec<(usize, f64)>,
+    /// What the band's windows are warmer by than the mean of the sample, K; NaN where missing.
+    pub window: f64,
     /// The same for spectra that are the same; 0 for those with hardly a value.
     pub key: u64,
 }
@@ -56,8 +64,8 @@ impl SpectraCheck<'_> {
         windows.map_or(f64::INFINITY, |windows| windows.limit(limit))
     }
 
-    /// Looks at all footprints, line by line.
-    pub fn all(&self, grid: &ScanGrid) -> Vec<SpectrumReading> {
+    /// Looks at all footprints, line by line; with the sums over each line that a shift is told from.
+    pub fn all(&self, grid: &ScanGrid) -> (Vec<SpectrumReading>, Vec<LineSums>) {
         let many = self.basis.map(ManyResiduals::new);
         let windows = self.basis.and_then(|basis| RingingWindows::over(&basis.adjacent));
         let expected = self.excused.iter().filter(|excused| !**excused).count();
@@ -65,7 +73,8 @@ impl SpectraCheck<'_> {
         let readings = lines.map_init(Vec::new, |buffer, line| {
             self.line(grid, line, expected, many.as_ref(), windows.as_ref(), buffer)
         });
-        readings.flatten_iter().collect()
+        let (readings, sums): (Vec<_>, Vec<_>) = readings.unzip();
+        (readings.into_iter().flatten().collect(), sums)
     }
 
     fn line(
@@ -76,15 +85,17 @@ impl SpectraCheck<'_> {
         many: Option<&ManyResiduals<'_>>,
         windows: Option<&RingingWindows>,
         buffer: &mut Vec<f64>,
-    ) -> Vec<SpectrumReading> {
+    ) -> (Vec<SpectrumReading>, LineSums) {
         let width = self.basis.map_or(0, |basis| basis.channels.len());
         let first = line * grid.row_length();
         let mut block = vec![0.0_f32; grid.row_length() * width];
         let mut readings = Vec::with_capacity(grid.row_length());
         // Spectra of which something is missing go the slow way.
         let mut whole = Vec::with_capacity(grid.row_length());
+        let (mut sums, mut position) = (LineSums::default(), Vec::new());
         for offset in 0..grid.row_length() {
             self.readings.radiances(first + offset, buffer);
+            self.gather_lines(grid, offset, buffer, &mut position, &mut sums);
             let mut reading = self.plain(buffer, expected);
             if let (Some(many), Some(basis)) = (many, self.basis) {
                 if basis.channels.iter().all(|channel| buffer[*channel].is_finite()) {
@@ -107,13 +118,36 @@ impl SpectraCheck<'_> {
                 self.judge(&basis.residual(buffer), basis, windows, &mut readings[offset]);
             }
         }
-        readings
+        (readings, sums)
+    }
+
+    /// Takes the lines of one footprint; with the last detector the position is complete.
+    fn gather_lines(
+        &self,
+        grid: &ScanGrid,
+        offset: usize,
+        radiances: &[f64],
+        position: &mut Vec<f64>,
+        sums: &mut LineSums,
+    ) {
+        let Some(lines) = self.lines else { return };
+        let detector = grid.detector(offset);
+        if detector == 0 {
+            position.clear();
+        }
+        if lines.alive.contains(&detector) {
+            position.extend(lines.channels.iter().map(|channel| radiances[*channel]));
+        }
+        if detector + 1 == grid.detectors {
+            sums.add(position);
+        }
     }
 
     /// What needs no components.
     fn plain(&self, radiances: &[f64], expected: usize) -> SpectrumReading {
         let (mut missing, mut stretch, mut run) = (0, 0, 0);
-        for channel in self.readings.band.axis.sorted() {
+        let whole = radiances.iter().all(|value| value.is_finite());
+        for channel in self.readings.band.axis.sorted().iter().filter(|_| !whole) {
             if self.excused[*channel] {
                 continue;
             }
@@ -126,14 +160,9 @@ impl SpectraCheck<'_> {
             }
         }
         let key = if 2 * missing < expected { key(radiances) } else { 0 };
-        SpectrumReading {
-            missing,
-            stretch,
-            score: f64::NAN,
-            ringing: None,
-            spikes: Vec::new(),
-            key,
-        }
+        let window = self.window.signal(radiances);
+        let (score, ringing, spikes) = (f64::NAN, None, Vec::new());
+        SpectrumReading { missing, stretch, score, ringing, spikes, window, key }
     }
 
     /// Score and ringing of a residual, and whether it is so far below all limits that it need not

@@ -90,6 +90,46 @@ pub fn fit(rows: &Rows, noise: &[f64]) -> Option<Fitted> {
     Some(state.finish(stage))
 }
 
+/// What a basis that was found elsewhere leaves of rows. Its channels must be among theirs; those that
+/// it does not know have no residual and no noise.
+pub fn judged_by(basis: Basis, rows: &Rows) -> Option<Fitted> {
+    let (count, width) = (rows.count(), rows.channels.len());
+    if count < FEWEST || basis.channels.len() < FEWEST {
+        return None;
+    }
+    let place = |channel: &usize| basis.channels.iter().position(|one| one == channel);
+    let places: Vec<Option<usize>> = rows.channels.iter().map(place).collect();
+    let band = rows.channels.iter().max().map_or(0, |last| last + 1);
+    let all: Vec<Vec<f64>> = rows
+        .radiances
+        .par_chunks_exact(width)
+        .map(|row| {
+            let mut radiances = vec![f64::NAN; band];
+            rows.channels.iter().zip(row).for_each(|(channel, value)| radiances[*channel] = *value);
+            let residual = basis.residual(&radiances);
+            places.iter().map(|place| place.map_or(f64::NAN, |place| residual[place])).collect()
+        })
+        .collect();
+    let leverages = basis.leverages();
+    let taken: Vec<f64> =
+        places.iter().map(|place| place.map_or(0.0, |place| leverages[place])).collect();
+    let residuals = Mat::from_fn(count, width, |row, channel| all[row][channel]);
+    let factors = noise_factors(rows, &residuals, &taken);
+    let shape = shape(rows, &residuals);
+    let noise = places.iter().zip(&factors).map(|(place, factor)| match place {
+        Some(place) => basis.noise[*place] * factor,
+        None => f64::NAN,
+    });
+    let in_noise = all.iter().flat_map(|row| row.iter().zip(&factors).map(|(one, f)| one / f));
+    Some(Fitted {
+        noise: noise.collect(),
+        set_aside: places.iter().map(Option::is_none).collect(),
+        residuals: in_noise.collect(),
+        shape,
+        basis,
+    })
+}
+
 struct State<'r> {
     rows: &'r Rows,
     noise: Vec<f64>,
@@ -217,71 +257,27 @@ impl State<'_> {
         if like.len() >= FEWEST {
             self.kept = like;
         }
-        let factors = self.noise_factors(stage);
+        let factors = noise_factors(self.rows, &stage.residuals, &self.taken(stage));
         let mut leverages = stage.leverages.iter();
         self.used.retain(|_| leverages.next().is_none_or(|own| *own <= OWN_SHARE));
         self.noise.iter_mut().zip(factors).for_each(|(noise, factor)| *noise *= factor);
-        self.power = self.shape(&stage.residuals).largest_power();
+        self.power = shape(self.rows, &stage.residuals).largest_power();
     }
 
-    /// The noise of each channel in units of what was taken for it: what the residuals of pairs
-    /// differ by, corrected for what the components took along.
-    fn noise_factors(&self, stage: &Stage) -> Vec<f64> {
+    /// What the components take along of the noise of each channel of the rows.
+    fn taken(&self, stage: &Stage) -> Vec<f64> {
         let mut taken = vec![0.0; self.rows.channels.len()];
         for (channel, own) in self.used.iter().zip(&stage.leverages) {
             taken[*channel] = *own;
         }
-        let factor = |channel: usize| {
-            let mut differences: Vec<f64> = self.pairs_of(channel, &stage.residuals).collect();
-            let deviation = deviation_from_zero(&mut differences) / std::f64::consts::SQRT_2;
-            let factor = deviation / f64::sqrt((1.0 - taken[channel]).max(0.05));
-            // A channel whose neighbours agree to the last bit is coarsely packed.
-            if factor > 0.05 { factor } else { 0.05 }
-        };
-        (0..self.rows.channels.len()).into_par_iter().map(factor).collect()
-    }
-
-    fn pairs_of<'s>(
-        &'s self,
-        channel: usize,
-        residuals: &'s Mat<f64>,
-    ) -> impl Iterator<Item = f64> + 's {
-        let pairs = self.rows.pairs.iter();
-        pairs.map(move |(one, other)| residuals[(*one, channel)] - residuals[(*other, channel)])
-    }
-
-    /// Correlations between neighbours, of differences between pairs, so that what is left of the
-    /// scene counts little; clipped, so that outliers do.
-    fn shape(&self, residuals: &Mat<f64>) -> NoiseShape {
-        let rows = self.rows;
-        let width = rows.channels.len();
-        let differences: Vec<Vec<f64>> = rows
-            .pairs
-            .iter()
-            .map(|(one, other)| {
-                let difference = |c| residuals[(*one, c)] - residuals[(*other, c)];
-                (0..width).map(|c| f64::clamp(difference(c), -5.0, 5.0)).collect()
-            })
-            .collect();
-        NoiseShape::measured(|lag| {
-            let (mut products, mut squares) = (0.0, 0.0);
-            for first in 0..width.saturating_sub(lag) {
-                if rows.adjacent[first..first + lag].iter().all(|adjacent| *adjacent) {
-                    for row in &differences {
-                        products += row[first] * row[first + lag];
-                        squares += 0.5 * (row[first].powi(2) + row[first + lag].powi(2));
-                    }
-                }
-            }
-            (squares > 0.0).then(|| products / squares)
-        })
+        taken
     }
 
     fn finish(self, stage: Stage) -> Fitted {
         let rows = self.rows;
         let (count, width) = (rows.count(), rows.channels.len());
-        let factors = self.noise_factors(&stage);
-        let shape = self.shape(&stage.residuals);
+        let factors = noise_factors(rows, &stage.residuals, &self.taken(&stage));
+        let shape = shape(rows, &stage.residuals);
         let kept: Vec<f64> = self.kept.iter().map(|row| stage.scores[*row]).collect();
         let mean = kept.iter().sum::<f64>() / kept.len() as f64;
         let squares: f64 = kept.iter().map(|score| (score - mean).powi(2)).sum();
@@ -312,4 +308,44 @@ impl State<'_> {
         let noise = self.noise.iter().zip(&factors).map(|(noise, factor)| noise * factor).collect();
         Fitted { basis, set_aside, residuals, noise, shape }
     }
+}
+
+/// The noise of each channel in units of what was taken for it: what the residuals of pairs differ
+/// by, corrected for what the components took along.
+fn noise_factors(rows: &Rows, residuals: &Mat<f64>, taken: &[f64]) -> Vec<f64> {
+    let factor = |channel: usize| {
+        let pairs = rows.pairs.iter();
+        let difference = |(one, other): &(usize, usize)| {
+            residuals[(*one, channel)] - residuals[(*other, channel)]
+        };
+        let mut differences: Vec<f64> = pairs.map(difference).collect();
+        let deviation = deviation_from_zero(&mut differences) / std::f64::consts::SQRT_2;
+        // A channel whose neighbours agree to the last bit is coarsely packed.
+        (deviation / f64::sqrt((1.0 - taken[channel]).max(0.05))).max(0.05)
+    };
+    (0..rows.channels.len()).into_par_iter().map(factor).collect()
+}
+
+/// Correlations between neighbours, of differences between pairs, so that what is left of the scene
+/// counts little; clipped, so that outliers do.
+fn shape(rows: &Rows, residuals: &Mat<f64>) -> NoiseShape {
+    let width = rows.channels.len();
+    let clipped = |(one, other): &(usize, usize)| -> Vec<f64> {
+        let difference = |c| residuals[(*one, c)] - residuals[(*other, c)];
+        let size = |c| f64::clamp(difference(c), -5.0, 5.0);
+        (0..width).map(size).map(|one| if one.is_nan() { 0.0 } else { one }).collect()
+    };
+    let differences: Vec<Vec<f64>> = rows.pairs.iter().map(clipped).collect();
+    NoiseShape::measured(|lag| {
+        let (mut products, mut squares) = (0.0, 0.0);
+        for first in 0..width.saturating_sub(lag) {
+            if rows.adjacent[first..first + lag].iter().all(|adjacent| *adjacent) {
+                for row in &differences {
+                    products += row[first] * row[first + lag];
+                    squares += 0.5 * (row[first].powi(2) + row[first + lag].powi(2));
+                }
+            }
+        }
+        (squares > 0.0).then(|| products / squares)
+    })
 }

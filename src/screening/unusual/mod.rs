@@ -4,7 +4,9 @@ mod basis;
 mod components;
 mod fit;
 mod residuals;
+mod saved;
 
 pub use basis::{Basis, TrainingScores, score};
-pub use fit::{Fitted, Rows, fit};
+pub use fit::{Fitted, Rows, fit, judged_by};
 pub use residuals::ManyResiduals;
+pub use saved::{SavedBases, fit_together, instrument_shape};

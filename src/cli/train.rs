@@ -1,0 +1,107 @@
+//! `radsieve train`: what the spectra of a campaign's granules are made of.
+
+use std::io::Write;
+use std::path::PathBuf;
+
+use serde_json::json;
+
+use super::exit::UsageError;
+use super::inputs::{Inputs, Reading};
+use super::{Exit, surroundings};
+use crate::flags::Campaign;
+use crate::review::{basis_path, rulebook_of, write_bases};
+use crate::screening::health::training_rows;
+use crate::screening::unusual::{Rows, SavedBases, fit_together, instrument_shape};
+use crate::system::{Cancel, clean_text};
+
+/// Spectra of all granules together: many times the components that are kept.
+const SPECTRA: usize = 6000;
+/// And at least as many of each granule.
+const FEWEST_EACH: usize = 100;
+
+/// What was typed.
+#[derive(Debug, clap::Args)]
+#[command(after_help = "Example:\n  radsieve train spring/*.nc --campaign spring\n\n\
+    The principal components are kept in the campaign's folder, in one file for each instrument; \
+    screen and review then hold spectra against them. Without them each granule is held against its \
+    own, which cannot find what is common in it. Take granules of all seasons and places, other than \
+    those to be screened. What is unlike the others is left out.")]
+pub struct Arguments {
+    #[command(flatten)]
+    inputs: Inputs,
+    #[command(flatten)]
+    reading: Reading,
+    /// The campaign folder; made if it is not there.
+    #[arg(long, value_name = "DIR", default_value = surroundings::DEFAULT_CAMPAIGN)]
+    campaign: PathBuf,
+    /// JSON in place of text.
+    #[arg(long)]
+    json: bool,
+}
+
+/// Runs the command.
+pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
+    let files = arguments.inputs.files()?;
+    let opening = arguments.reading.opening()?;
+    let campaign = Campaign::open_or_create(&arguments.campaign)?;
+    let limits = rulebook_of(&campaign).map_err(|error| UsageError(error.to_string()))?.health;
+    let each = (SPECTRA / files.len().max(1)).max(FEWEST_EACH);
+    let mut place: Option<(PathBuf, String)> = None;
+    let mut granules = Vec::new();
+    let mut bands: Vec<(String, Vec<(Rows, Vec<f64>)>)> = Vec::new();
+    for file in &files {
+        let granule = opening.open(file)?;
+        let shape = instrument_shape(&granule);
+        let (_, first) =
+            place.get_or_insert_with(|| (basis_path(campaign.folder(), &granule), shape.clone()));
+        if *first != shape {
+            let file = clean_text(&file.display().to_string());
+            let what = format!(
+                "{file} is of another instrument than the first file: {shape}, not {first}"
+            );
+            return Err(UsageError(what).into());
+        }
+        granule.fill(&Cancel::new(), &mut |_| {})?;
+        for (name, rows, noise) in training_rows(&granule, &limits, each, &Cancel::new())? {
+            match bands.iter_mut().find(|(band, _)| *band == name) {
+                Some((_, all)) => all.push((rows, noise)),
+                None => bands.push((name, vec![(rows, noise)])),
+            }
+        }
+        granules.push(granule.name());
+    }
+    let Some((path, instrument)) = place else {
+        return Err(UsageError("name at least one file".into()).into());
+    };
+    let fitted = bands.iter().filter_map(|(name, all)| Some((name.clone(), fit_together(all)?)));
+    let bases = SavedBases { instrument, granules, bands: fitted.collect(), file: String::new() };
+    if bases.bands.is_empty() {
+        anyhow::bail!("there are too few whole spectra to find components in");
+    }
+    write_bases(&path, &bases)?;
+    let bands = bases.bands.iter().map(|(name, basis)| {
+        json!({
+            "band": name,
+            "components": basis.components(),
+            "spectra": basis.scores.spectra,
+            "left_out": basis.scores.left_out,
+            "mean_score": basis.scores.mean,
+            "score_deviation": basis.scores.deviation,
+        })
+    });
+    let mut out = std::io::stdout().lock();
+    if arguments.json {
+        let file = path.display().to_string();
+        let bands = bands.collect::<Vec<_>>();
+        writeln!(out, "{}", json!({ "schema": 1, "file": file, "bands": bands }))?;
+        return Ok(Exit::Done);
+    }
+    for (name, basis) in &bases.bands {
+        let (name, scores) = (clean_text(name), &basis.scores);
+        let (components, spectra) = (basis.components(), scores.spectra);
+        let left_out = scores.left_out;
+        writeln!(out, "{name}: {components} components of {spectra} spectra, {left_out} left out")?;
+    }
+    writeln!(out, "{}", clean_text(&path.display().to_string()))?;
+    Ok(Exit::Done)
+}
