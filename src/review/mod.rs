@@ -9,6 +9,7 @@ mod cases;
 mod adopting;
 mod alike;
 mod basis_file;
+mod channel_verbs;
 mod exporting;
 mod many_spectra;
 mod producer;

@@ -28,6 +28,9 @@ pub enum Refusal {
     /// The tests suggest no flag for any of them.
     #[error("the tests suggest no flag here: give one instead")]
     NothingToOverrule,
+    /// No channel is selected.
+    #[error("no channel is selected")]
+    NoChannels,
     /// None of the footprints carries the flag.
     #[error("none of them carries {0}")]
     NotFlagged(String),

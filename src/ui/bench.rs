@@ -12,6 +12,7 @@ use crate::tray::Standing;
 pub use super::bench_parts::{
     Awaited, Filling, Index, Overtaken, Pinned, Quality, RecordState, Signs, Tests, overtake,
 };
+use super::channel_flags::ChannelPick;
 use super::channels::Channels;
 use super::doubting::Doubt;
 use super::jobs::Job;
@@ -81,6 +82,8 @@ pub struct Bench {
     pub window: SpectrumWindow,
     /// The channel in hand, by its number in `channels`.
     pub channel: usize,
+    /// Channels picked beside it.
+    pub channel_pick: ChannelPick,
     /// What the Trace shows beside the spectrum, and in which quantity.
     pub look: TraceLook,
     /// Steps that the Field is zoomed in.
@@ -133,6 +136,7 @@ impl Bench {
             cursor: 0,
             selecting: Selecting::default(),
             spread: Spread::default(),
+            channel_pick: ChannelPick::default(),
             spot: None,
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),

@@ -23,6 +23,8 @@ pub enum Command {
     Against(String),
     /// Compare all spectra with the one under the cursor.
     Alike(Measure),
+    /// Pick all channels over so many times their noise.
+    Noisy(f64),
     /// Take a test in hand, to try its threshold.
     Try(String),
     /// Select footprints.
@@ -88,6 +90,12 @@ const WORDED: &[Worded] = &[
             "angle" => Ok(Command::Alike(Measure::Angle)),
             _ => Err("distance or angle".to_owned()),
         },
+    },
+    Worded {
+        name: "noisy",
+        words: "[FACTOR]",
+        help: "pick all channels over so many times their noise; 2 unless told",
+        parse: |words| if words.is_empty() { Ok(2.0) } else { number(words) }.map(Command::Noisy),
     },
     Worded {
         name: "try",

@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use jiff::Timestamp;
 
-use crate::flags::{Act, Decision, Ruling, Scope};
+use crate::flags::{Act, Decision, FootprintSet, Ruling, Scope};
 use crate::review::{Record, Refusal};
 
 use super::app::App;
@@ -110,7 +110,14 @@ fn choose_flag(app: &mut App, give: bool) -> Vec<Job> {
         _ => None,
     };
     let cursor = last.unwrap_or(0);
-    app.overlay = Overlay::Flags(FlagPrompt { give, selection, flags, cursor, with_reason: false });
+    app.overlay = Overlay::Flags(FlagPrompt {
+        give,
+        selection,
+        flags,
+        cursor,
+        with_reason: false,
+        channels: None,
+    });
     Vec::new()
 }
 
@@ -118,6 +125,11 @@ fn choose_flag(app: &mut App, give: bool) -> Vec<Job> {
 fn again(app: &mut App) -> Vec<Job> {
     let Some(deed) = app.last_deed.clone() else { return choose_flag(app, true) };
     let Some(bench) = app.bench() else { return no_granule(app) };
+    if let Deed::FlagChannels { give, flag, why, .. } = deed {
+        let (channels, words) = bench.picked_channels();
+        let selection = Selection { footprints: FootprintSet::empty(), words };
+        return carry_out(app, Deed::FlagChannels { give, flag, channels, why }, selection);
+    }
     let selection = bench.selection();
     carry_out(app, deed, selection)
 }
@@ -134,6 +146,13 @@ pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
             let count = record.withdraw(&flag, &footprints, why, now)?;
             Ok(format!("{words}: {flag} withdrawn from {count}"))
         }
+        Deed::FlagChannels { give: true, flag, channels, why } => {
+            record.flag_channels(&flag, &channels, why, now).map(|()| format!("{words}: {flag}"))
+        }
+        Deed::FlagChannels { flag, channels, why, .. } => {
+            let count = record.withdraw_channels(&flag, &channels, why, now)?;
+            Ok(format!("{words}: {flag} withdrawn from {count}"))
+        }
         Deed::Assess => {
             record.assess(&footprints, None, now).map(|()| format!("{words}: looked at"))
         }
@@ -144,6 +163,7 @@ pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
     if done {
         app.last_deed = Some(again);
         if let Some(bench) = app.bench_mut() {
+            bench.drop_channel_pick();
             bench.selecting.clear();
         }
     }
@@ -184,7 +204,7 @@ pub fn export_if_kept(app: &mut App) -> Vec<Job> {
 
 /// A decision in a few words.
 pub fn words(decision: &Decision) -> String {
-    let count = decision.act.footprints().map_or(0, crate::flags::FootprintSet::len);
+    let count = decision.act.footprints().map_or(0, FootprintSet::len);
     let what = match &decision.act {
         Act::Flag { flag, .. } => format!("{flag} at {count}"),
         Act::Withdraw { flag, .. } => format!("{flag} withdrawn at {count}"),

@@ -12,6 +12,7 @@ mod answers;
 pub mod app;
 pub mod bench;
 mod bench_parts;
+mod channel_flags;
 mod channels;
 pub mod colour;
 pub mod command;

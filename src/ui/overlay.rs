@@ -1,6 +1,6 @@
 //! What lies over the panes and takes the keys: help, prompts, questions.
 
-use crate::flags::FootprintSet;
+use crate::flags::{ChannelName, FootprintSet};
 
 use super::line::Line;
 
@@ -56,6 +56,8 @@ pub enum Purpose {
         flag: String,
         /// Where.
         selection: Selection,
+        /// These channels instead of footprints.
+        channels: Option<Vec<ChannelName>>,
     },
     /// The reason of taking a threshold over into the rulebook.
     Adopt,
@@ -86,10 +88,36 @@ pub enum Deed {
         /// A reason, if there is one.
         why: Option<String>,
     },
+    /// A flag is given to channels, or else withdrawn.
+    FlagChannels {
+        /// Given, or else withdrawn.
+        give: bool,
+        /// The flag's name.
+        flag: String,
+        /// Which channels.
+        channels: Vec<ChannelName>,
+        /// A reason, if there is one.
+        why: Option<String>,
+    },
     /// It counts as looked at.
     Assess,
     /// A remark on it is written down.
     Comment(String),
+}
+
+impl Deed {
+    /// A flag given to or withdrawn from channels where there are some, else footprints.
+    pub fn flag(
+        give: bool,
+        flag: String,
+        channels: Option<Vec<ChannelName>>,
+        why: Option<String>,
+    ) -> Deed {
+        match channels {
+            Some(channels) => Deed::FlagChannels { give, flag, channels, why },
+            None => Deed::Flag { give, flag, why },
+        }
+    }
 }
 
 /// A flag being chosen.
@@ -99,6 +127,8 @@ pub struct FlagPrompt {
     pub give: bool,
     /// Where.
     pub selection: Selection,
+    /// These channels instead of footprints.
+    pub channels: Option<Vec<ChannelName>>,
     /// The names to choose from.
     pub flags: Vec<String>,
     /// The choice under the cursor.

@@ -104,18 +104,19 @@ fn choose(app: &mut App, key: Key, mut prompt: FlagPrompt) -> Vec<Job> {
         app.overlay = Overlay::Flags(prompt);
         return Vec::new();
     };
-    let FlagPrompt { give, selection, with_reason, .. } = prompt;
+    let FlagPrompt { give, selection, channels, with_reason, .. } = prompt;
     if with_reason {
-        let purpose = Purpose::Reason { give, flag, selection };
+        let purpose = Purpose::Reason { give, flag, selection, channels };
         app.overlay = Overlay::Line(LinePrompt::new(purpose, ""));
         return Vec::new();
     }
-    deciding::carry_out(app, Deed::Flag { give, flag, why: None }, selection)
+    deciding::carry_out(app, Deed::flag(give, flag, channels, None), selection)
 }
 
 fn by_letter(app: &mut App, prompt: &FlagPrompt, letter: char) -> Option<String> {
     let vocabulary = &app.outside.campaign.settings().vocabulary;
-    let kind = vocabulary.by_key(Scope::Footprint, letter)?;
+    let scope = if prompt.channels.is_some() { Scope::Channel } else { Scope::Footprint };
+    let kind = vocabulary.by_key(scope, letter)?;
     prompt.flags.contains(&kind.name).then(|| kind.name.clone())
 }
 

@@ -3,6 +3,7 @@
 use crate::flags::Scope;
 
 use super::app::App;
+use super::channel_flags;
 use super::command::{self, Command, Known};
 use super::deciding;
 use super::jobs::Job;
@@ -178,8 +179,8 @@ fn submit(app: &mut App, mut prompt: LinePrompt) -> Vec<Job> {
             app.overlay = Overlay::Line(prompt);
             Vec::new()
         }
-        Purpose::Reason { give, flag, selection } => {
-            deciding::carry_out(app, Deed::Flag { give, flag, why: words(&text) }, selection)
+        Purpose::Reason { give, flag, selection, channels } => {
+            deciding::carry_out(app, Deed::flag(give, flag, channels, words(&text)), selection)
         }
         Purpose::Adopt => spreading::adopt(app, words(&text)),
         Purpose::Aside => deciding::change(app, |record, now| {
@@ -218,6 +219,7 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
         Command::Reference(path) => tracing::reference_file(app, &path),
         Command::Against(text) => spreading::against(app, &text),
         Command::Alike(measure) => spreading::ask(app, measure),
+        Command::Noisy(factor) => channel_flags::over_noise(app, factor),
         Command::Try(name) => spreading::take_test(app, &name),
         Command::Select(join, wanted) => picking::select(app, join, wanted),
         Command::Range(range) => looking::set_range(app, range),

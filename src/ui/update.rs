@@ -8,8 +8,8 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, deciding, doubting, ledger, looking, moving, picking, prompts, screening, spot,
-    spreading, strip, tracing, turning, typing,
+    answers, channel_flags, deciding, doubting, ledger, looking, moving, picking, prompts,
+    screening, spot, spreading, strip, tracing, turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -98,6 +98,9 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::NextTest | A::PreviousTest | A::Valley | A::TurnSide => spreading::act(app, action),
         A::Alike => spreading::ask(app, crate::review::Measure::Distance),
         A::Growing => spreading::switch_growing(app),
+        A::ChannelInterval | A::FlagChannels | A::WithdrawChannels => {
+            channel_flags::act(app, action)
+        }
         A::Adopt => spreading::ask_to_adopt(app),
         A::Box | A::Polygon | A::Join | A::Invert | A::Reselect => picking::pick(app, action),
         A::SignOff | A::Reopen => deciding::decide(app, action),
@@ -172,8 +175,9 @@ fn next_pane(app: &App, forward: bool) -> Pane {
 /// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, running tests, then
 /// the message.
 fn cancel(app: &mut App) -> Vec<Job> {
-    let dropped =
-        picking::give_up(app) || app.bench_mut().is_some_and(|bench| bench.selecting.let_go());
+    let let_go =
+        |bench: &mut super::bench::Bench| bench.selecting.let_go() || bench.drop_channel_pick();
+    let dropped = picking::give_up(app) || app.bench_mut().is_some_and(let_go);
     if app.leaving {
         app.leaving = false;
         app.say("stays");

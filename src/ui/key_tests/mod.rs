@@ -1,5 +1,6 @@
 //! Start state, keys, expected.
 
+mod channel_flags;
 mod deciding;
 mod doubting;
 mod looking;

@@ -4,6 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 
 use super::trace_values::{self, Values};
+use crate::flags::Scope;
 use crate::spectral::{ABSORPTION_BANDS, planck};
 use crate::ui::app::{App, Table};
 use crate::ui::bench::Bench;
@@ -71,7 +72,7 @@ impl TraceParts {
             levels: levels.collect(),
             planck: planck_curves(bench),
             bars: trace_values::bars(bench),
-            marks: look.used.iter().map(|wavenumber| Mark { wavenumber: *wavenumber }).collect(),
+            marks: marks(bench),
         }
     }
 
@@ -125,6 +126,26 @@ impl TraceParts {
             focused: app.focus() == Pane::Trace,
         })
     }
+}
+
+/// Channels of the layer or test in hand, those that are flagged, and above all those picked.
+fn marks(bench: &Bench) -> Vec<Mark> {
+    let used = bench.look.used.iter().map(|at| Mark { wavenumber: *at, sign: None });
+    let mut marks: Vec<Mark> = used.collect();
+    if let Some(record) = bench.record.open() {
+        let kinds = record.vocabulary().of_scope(Scope::Channel);
+        let channels = record.state().channel_flags.values().flat_map(|band| band.values());
+        marks.extend(channels.filter_map(|channel| {
+            let kind = kinds.iter().find(|kind| channel.flags & kind.mask() != 0)?;
+            Some(Mark { wavenumber: channel.wavenumber, sign: Some(kind.glyph) })
+        }));
+    }
+    if bench.has_channel_pick() {
+        let (picked, _) = bench.picked_channels();
+        let picked = picked.iter();
+        marks.extend(picked.map(|one| Mark { wavenumber: one.wavenumber, sign: Some('=') }));
+    }
+    marks
 }
 
 /// The wavenumber (cm-1) under a cell of the screen.

@@ -136,8 +136,8 @@ fn draw_marks(view: &TraceView<'_>, plot: &Plot, theme: &Theme, buffer: &mut Buf
     for mark in view.marks {
         let Some(x) = plot.column_of(mark.wavenumber) else { continue };
         if let Some(cell) = buffer.cell_mut((x, y)) {
-            cell.set_char(if theme.ascii { '^' } else { '▴' })
-                .set_style(theme.style(Tone::Warning));
+            let plain = if theme.ascii { '^' } else { '▴' };
+            cell.set_char(mark.sign.unwrap_or(plain)).set_style(theme.style(Tone::Warning));
         }
     }
 }
@@ -211,7 +211,7 @@ mod tests {
     #[test]
     fn bars_and_marks_stand_at_their_channels() {
         let bars = [Bar { wavenumber: 800.0, low: 240.0, high: 280.0 }];
-        let marks = [Mark { wavenumber: 700.0 }];
+        let marks = [Mark { wavenumber: 700.0, sign: None }];
         let curves = [Curve { letter: None, segments: level(&[210.0; 2]) }];
         let mut view = view();
         (view.bars, view.marks, view.curves) = (&bars, &marks, &curves);

@@ -82,6 +82,9 @@ pub struct Bar {
 pub struct Mark {
     /// Where it lies, cm-1.
     pub wavenumber: f64,
+    /// The letter of its flag, or a sign; the layer or test in hand is made from it where there is
+    /// none.
+    pub sign: Option<char>,
 }
 
 /// An unbroken run of channels.
