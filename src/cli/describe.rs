@@ -9,7 +9,9 @@ use std::path::PathBuf;
 
 use super::Exit;
 use super::inputs::Reading;
+use crate::flags::Campaign;
 use crate::granule::layout_text;
+use crate::review::Producer;
 use description::Description;
 
 /// What was typed.
@@ -26,6 +28,10 @@ pub struct Arguments {
     /// Print a starting map of the producer's quality, for the campaign's campaign.toml
     #[arg(long, conflicts_with_all = ["json", "as_layout"])]
     as_quality_map: bool,
+    /// A campaign folder: what its map makes of the producer's quality, and what it leaves out, goes
+    /// among the problems
+    #[arg(long, value_name = "DIR")]
+    campaign: Option<PathBuf>,
     #[command(flatten)]
     reading: Reading,
 }
@@ -42,7 +48,11 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         out.write_all(quality_map::quality_map_text(&granule).as_bytes())?;
         return Ok(Exit::Done);
     }
-    let description = Description::of(&granule)?;
+    let mut description = Description::of(&granule)?;
+    if let Some(folder) = &arguments.campaign {
+        let campaign = Campaign::open(folder)?;
+        description.take(&Producer::of(&granule, &campaign.settings().quality));
+    }
     if arguments.json {
         serde_json::to_writer_pretty(&mut out, &description).map_err(std::io::Error::from)?;
         writeln!(out)?;

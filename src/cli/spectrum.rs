@@ -11,9 +11,9 @@ use super::footprint_at::{footprint, indices};
 use super::inputs::Reading;
 use super::spectrum_energy::{EnergyView, stretches};
 use super::table::{cell, present, stream_error};
-use crate::granule::Granule;
+use crate::granule::{Granule, Quantity};
 use crate::review::{Review, Spectrum};
-use crate::spectral::{absorption, window_temperature};
+use crate::spectral::{absorption, brightness_temperature_or_nan, window_temperature};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
@@ -52,29 +52,57 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
             false => view.write_csv(&mut out)?,
         }
     } else if arguments.json {
-        let answer = answer(&arguments, review.granule(), &position, &spectrum);
+        let clear = clear(review.granule(), footprint)?;
+        let answer = answer(&arguments, review.granule(), &position, &spectrum, clear.as_deref());
         serde_json::to_writer(&mut out, &answer).map_err(io::Error::from)?;
         out.write_all(b"\n")?;
     } else {
-        write_csv(review.granule(), &spectrum, &mut out)?;
+        let clear = clear(review.granule(), footprint)?;
+        write_csv(review.granule(), &spectrum, clear.as_deref(), &mut out)?;
     }
     out.flush()?;
     Ok(Exit::Done)
 }
 
+/// The calculated clear-sky brightness temperatures of a footprint, band by band, missing as NaN;
+/// nothing where no band has any.
+fn clear(granule: &Granule, footprint: usize) -> anyhow::Result<Option<Vec<Vec<f64>>>> {
+    let mut found = Vec::new();
+    let mut any = false;
+    for (number, band) in granule.bands().iter().enumerate() {
+        let values = granule.calculated_clear(number, footprint..footprint + 1)?;
+        any |= values.is_some();
+        let values = values.unwrap_or_else(|| vec![f64::NAN; band.channels()]);
+        let kelvin = |(value, nu): (f64, &f64)| match band.quantity {
+            Quantity::BrightnessTemperature(_) => value,
+            Quantity::Radiance(_) => brightness_temperature_or_nan(*nu, value),
+        };
+        found.push(values.into_iter().zip(band.axis.wavenumbers()).map(kelvin).collect());
+    }
+    Ok(any.then_some(found))
+}
+
 /// Channels in the file's order, band after band.
-fn write_csv(granule: &Granule, spectrum: &Spectrum, out: &mut dyn Write) -> io::Result<()> {
+fn write_csv(
+    granule: &Granule,
+    spectrum: &Spectrum,
+    clear: Option<&[Vec<f64>]>,
+    out: &mut dyn Write,
+) -> io::Result<()> {
     let window = window_temperature(&stretches(granule, spectrum)).unwrap_or(f64::NAN);
     let bands = granule.bands();
     let mut writer = csv::Writer::from_writer(out);
     let head = ["band", "wavenumber_cm-1", "radiance_mW_m-2_sr-1_(cm-1)-1", "bt_K", "absorption"];
+    let head = head.iter().chain(clear.map(|_| &"bt_clear_K"));
     writer.write_record(head).map_err(stream_error)?;
-    for (band, values) in bands.iter().zip(&spectrum.bands) {
+    for (number, (band, values)) in bands.iter().zip(&spectrum.bands).enumerate() {
+        let mut clear = clear.map(|clear| clear[number].iter());
         let values = values.radiances.iter().zip(&values.temperatures);
         for (wavenumber, (radiance, temperature)) in band.axis.wavenumbers().iter().zip(values) {
             let absorbed = absorption(*wavenumber, *radiance, window);
             let numbers = [*wavenumber, *radiance, *temperature, absorbed].map(cell);
-            let row = std::iter::once(&band.name).chain(&numbers);
+            let clear = clear.as_mut().and_then(Iterator::next).map(|clear| cell(*clear));
+            let row = std::iter::once(&band.name).chain(&numbers).chain(clear.iter());
             writer.write_record(row).map_err(stream_error)?;
         }
     }
@@ -103,6 +131,8 @@ struct BandAnswer {
     #[serde(rename = "bt_K")]
     temperatures: Vec<Option<f64>>,
     absorption: Vec<Option<f64>>,
+    #[serde(rename = "bt_clear_K", skip_serializing_if = "Option::is_none")]
+    clear: Option<Vec<Option<f64>>>,
 }
 
 fn answer(
@@ -110,6 +140,7 @@ fn answer(
     granule: &Granule,
     position: &[usize],
     spectrum: &Spectrum,
+    clear: Option<&[Vec<f64>]>,
 ) -> Answer {
     let place = granule.geolocation();
     let field = |values: &Option<Vec<f64>>| {
@@ -129,7 +160,9 @@ fn answer(
             .bands()
             .iter()
             .zip(&spectrum.bands)
-            .map(|(band, values)| BandAnswer {
+            .enumerate()
+            .map(|(number, (band, values))| BandAnswer {
+                clear: clear.map(|clear| all(&clear[number])),
                 band: band.name.clone(),
                 wavenumbers: band.axis.wavenumbers().to_vec(),
                 radiances: all(&values.radiances),

@@ -70,6 +70,25 @@ fn layers_take_what_is_lent() {
 }
 
 #[test]
+fn a_spectrum_has_the_calculated_one_beside_it() {
+    let folder = folder();
+    let ask = ["spectrum", "plain.nc", "--at", "0,0,3", "--with", "aux"];
+    let (text, _) = output(folder.path(), &ask, 0);
+    let mut reader = csv::Reader::from_reader(text.as_bytes());
+    assert_eq!(reader.headers().unwrap().iter().next_back(), Some("bt_clear_K"));
+    let row = reader.records().next().unwrap().unwrap();
+    let last: f64 = row.iter().next_back().unwrap().parse().unwrap();
+    assert!((last - temperature(3) - 10.0).abs() < 1e-9, "{row:?}");
+    let json: serde_json::Value =
+        serde_json::from_str(&output(folder.path(), &[&ask[..], &["--json"]].concat(), 0).0)
+            .unwrap();
+    assert!(json["bands"][0]["bt_clear_K"][0].is_f64());
+    assert!(json["bands"][1]["bt_clear_K"][0].is_null(), "lent for one band only");
+    let (text, _) = output(folder.path(), &ask[..4], 0);
+    assert!(!text.contains("bt_clear_K"));
+}
+
+#[test]
 fn without_a_lender_the_names_are_known_and_missing() {
     let folder = folder();
     let ask = |layer: &str| output(folder.path(), &["tabulate", "plain.nc", "--layer", layer], 4).1;

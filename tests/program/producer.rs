@@ -137,6 +137,17 @@ fn explain_says_who_rejected() {
 }
 
 #[test]
+fn describe_shows_what_the_campaigns_map_makes_of_a_file() {
+    let folder = campaign("[quality.scene_quality]\n\"value 1\" = 'reject'\n");
+    let (text, _) = output(folder.path(), &["describe", "plain.nc", "--campaign", "campaign"]);
+    assert!(
+        text.contains("quality: the producer's `scene_quality` rejects 60 footprints"),
+        "{text}"
+    );
+    assert!(text.contains("does not cover missing (60)"), "{text}");
+}
+
+#[test]
 fn describe_prints_a_map_to_start_with() {
     let sample =
         concat!(env!("CARGO_MANIFEST_DIR"), "/sample_granules/synthetic_brindle_sea_of_lowen.nc");

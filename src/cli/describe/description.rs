@@ -6,6 +6,7 @@ use crate::granule::{
     Band, Decoder, FootprintVariable, Granule, GranuleError, Lender, Origin, Problem, Quantity,
 };
 use crate::netcdf_files::{Storage, Variable};
+use crate::review::Producer;
 use crate::system::clean_text;
 use crate::units::RadianceUnit;
 
@@ -197,6 +198,25 @@ impl Description {
             lenders: lenders.collect::<Result<_, _>>()?,
             problems: granule.problems().iter().map(ProblemDescription::of).collect(),
         })
+    }
+}
+
+impl Description {
+    /// Adds what a campaign makes of the producer's quality to the problems.
+    pub fn take(&mut self, producer: &Producer) {
+        let rejected = producer.rejections.iter().map(|one| {
+            let (variable, count) = (&one.variable, one.footprints.len());
+            let what =
+                format!("the producer's `{variable}` rejects {count} footprints: {}", one.why);
+            (what, format!("flagged {}; no test looks at them", one.flag))
+        });
+        let uncovered = producer.problems.iter().map(|what| (what.clone(), String::new()));
+        self.problems.extend(rejected.chain(uncovered).map(|(what, advice)| ProblemDescription {
+            kind: "quality",
+            what,
+            where_: String::new(),
+            advice,
+        }));
     }
 }
 
