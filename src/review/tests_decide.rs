@@ -55,8 +55,17 @@ pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     let why = format!("rulebook {} ({})", rulebook.name, rulebook.fingerprint);
     acts.push((Act::Assess { footprints: assessed }, Some(why)));
     acts.retain(|(act, _)| act.footprints().is_some_and(|footprints| !footprints.is_empty()));
-    acts.extend(screened.examined.iter().flat_map(spectra_acts));
+    let of_set = screened.examined.iter().flat_map(spectra_acts);
+    acts.extend(of_set.filter_map(|(act, why)| Some((spared(act, screened)?, why))));
     acts
+}
+
+/// An act without the footprints that were left out; nothing where none are left.
+fn spared(act: Act, screened: &Screened) -> Option<Act> {
+    let Act::Flag { flag, footprints, bands } = act else { return Some(act) };
+    let left_out = screened.left_out.iter().enumerate().filter(|(_, left_out)| **left_out);
+    let footprints = footprints.minus(&left_out.map(|(at, _)| at).collect());
+    (!footprints.is_empty()).then_some(Act::Flag { flag, footprints, bands })
 }
 
 fn say_the_same(decisions: &[Decision], acts: &[(Act, Option<String>)]) -> bool {

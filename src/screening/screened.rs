@@ -23,6 +23,8 @@ pub struct Screened {
     pub flags: Vec<FlagResult>,
     /// Footprints of which something can be said; the others are not assessed.
     pub assessed: Vec<bool>,
+    /// Footprints that were left out: nothing is said about them. None at all where none were.
+    pub left_out: Vec<bool>,
     /// 0 plain, 1 a coin toss or hardly assessed.
     pub doubt: Vec<f64>,
     /// What the spectra say as a set, where they have been looked at.
@@ -78,7 +80,10 @@ pub fn screen(rulebook: &Rulebook, names: &dyn Names) -> Screened {
     let footprints = 0..surfaces.len();
     let assessed = footprints.clone().map(|at| is_assessed(rulebook, &flags, at)).collect();
     let doubt = footprints.map(|at| doubt(&flags, at)).collect();
-    Screened { rulebook: rulebook.clone(), surfaces, tests, flags, assessed, doubt, examined: None }
+    let left_out: Vec<bool> = (0..surfaces.len()).map(|at| names.is_left_out(at)).collect();
+    let left_out = if left_out.contains(&true) { left_out } else { Vec::new() };
+    let rulebook = rulebook.clone();
+    Screened { rulebook, surfaces, tests, flags, assessed, left_out, doubt, examined: None }
 }
 
 /// A family that speaks about a flag on a surface.

@@ -12,9 +12,9 @@ use super::repeats::repeated_spectra;
 use super::sample::{SAMPLE, Sample};
 use super::shift::{DetectorShift, Lines, detector_shifts, shifted_detectors};
 use super::spectra::{SpectraCheck, SpectrumReading};
-use crate::granule::{Apodisation, Granule, GranuleError};
+use crate::granule::{Granule, GranuleError};
 use crate::screening::unusual::{Basis, Fitted, Rows, SavedBases, fit, judged_by};
-use crate::spectral::{HAMMING_NOISE_FACTOR, median};
+use crate::spectral::median;
 use crate::system::Cancel;
 
 /// What the spectra of a granule say as a set.
@@ -192,13 +192,9 @@ fn nedn(granule: &Granule, readings: &BandReadings<'_>, grid: &ScanGrid) -> Opti
     if of_detectors.is_empty() || readings.in_kelvin() {
         return None;
     }
-    let factor = match readings.band.apodisation {
-        Apodisation::HammingApplied => HAMMING_NOISE_FACTOR,
-        _ => 1.0,
-    };
     let of_channel = |channel: usize| {
         let values = of_detectors.iter().map(|noise| noise[channel]);
-        factor * median(&mut values.filter(|value| value.is_finite()).collect::<Vec<_>>())
+        median(&mut values.filter(|value| value.is_finite()).collect::<Vec<_>>())
     };
     Some((0..readings.band.channels()).map(of_channel).collect())
 }
