@@ -20,6 +20,9 @@ pub struct Arguments {
     /// Colours: auto, always, never, 16, 256 or true
     #[arg(long, value_name = "WHEN", default_value = "auto")]
     color: String,
+    /// The terminal's ground: auto (by COLORFGBG, else dark), light or dark
+    #[arg(long, value_name = "GROUND", default_value = "auto")]
+    background: String,
     /// Letters and ASCII signs only
     #[arg(long)]
     ascii: bool,
@@ -69,10 +72,11 @@ mod on_screen {
         if let Some(layer) = &arguments.layer {
             Expression::parse(layer).map_err(|error| UsageError(error.to_string()))?;
         }
+        let background = background(&arguments.background)?;
         if !ui::is_usable(env::var("TERM").ok().as_deref()) {
             return Err(UsageError(NO_TERMINAL.to_owned()).into());
         }
-        let theme = theme(request, &arguments);
+        let theme = theme(request, background, &arguments);
         let files = arguments.inputs.files()?;
         let is_new = !arguments.campaign.exists();
         let (campaign, unwritable) = Campaign::open_as_possible(&arguments.campaign)?;
@@ -120,14 +124,23 @@ mod on_screen {
         })
     }
 
-    fn theme(request: ColourRequest, arguments: &Arguments) -> Theme {
+    fn background(typed: &str) -> Result<Background, UsageError> {
+        match typed {
+            "auto" => Ok(Background::from_colorfgbg(env::var("COLORFGBG").ok().as_deref())),
+            "light" => Ok(Background::Light),
+            "dark" => Ok(Background::Dark),
+            other => Err(UsageError(format!("{other:?} is no ground: use auto, light or dark"))),
+        }
+    }
+
+    fn theme(request: ColourRequest, background: Background, arguments: &Arguments) -> Theme {
         let is_terminal = std::io::stdout().is_terminal();
         let settings = ColourSettings::gather(request, is_terminal, |name| env::var(name).ok());
         let depth = settings.depth();
         Theme {
             depth: if arguments.low_bandwidth { depth.min(ColourDepth::Indexed) } else { depth },
             ascii: arguments.ascii,
-            background: Background::from_colorfgbg(env::var("COLORFGBG").ok().as_deref()),
+            background,
         }
     }
 }

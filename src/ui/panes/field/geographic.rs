@@ -249,8 +249,8 @@ mod tests {
         ) {
             let (latitude, longitude): (Vec<f64>, Vec<f64>) = points.into_iter().unzip();
             let Some(map) = Placement::geographic(&latitude, &longitude) else { return Ok(()) };
-            for footprint in 0..latitude.len() {
-                prop_assert_eq!(map.place_of(footprint).is_some(), latitude[footprint].abs() <= 90.0);
+            for (footprint, latitude) in latitude.iter().enumerate() {
+                prop_assert_eq!(map.place_of(footprint).is_some(), latitude.abs() <= 90.0);
                 if let Some((column, row)) = map.place_of(footprint) {
                     prop_assert!(map.footprint_at(column, row).is_some());
                 }

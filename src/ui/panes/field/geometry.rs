@@ -76,7 +76,7 @@ impl Geometry {
     pub(super) fn cell_at(&self, column: f64, row: f64) -> Option<(u16, u16)> {
         let along = |place: f64, origin: usize, extent: usize, size: usize| {
             let share = (place - origin as f64) / extent as f64;
-            (0.0..1.0).contains(&share).then(|| (share * size as f64) as u16)
+            (0.0..1.0).contains(&share).then_some((share * size as f64) as u16)
         };
         let x = along(column, self.origin.0, self.extent.0, self.size.0)?;
         let y = along(row, self.origin.1, self.extent.1, self.size.1)?;
