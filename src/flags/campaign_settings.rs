@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 use std::io::Write;
 use std::path::Path;
 
-use super::{CampaignError, FlagExtension, KeySetting, QualityMap, Vocabulary};
+use super::{CampaignError, FlagExtension, KeySetting, QualityMap, SignOffLimits, Vocabulary};
 
 /// The settings file's name in the campaign folder.
 pub const SETTINGS_FILE: &str = "campaign.toml";
@@ -38,6 +38,14 @@ format = 1
 # daylight = "ignore"
 # moon_near = "show"
 
+# Granules within these limits are offered for signing off together (shares from 0 to 1).
+# [sign_off]
+# doubt = 0.02                # in doubt
+# not_assessed = 0.02
+# bad_spectra = 0.01
+# flagged_channels = 20       # a number of channels
+# spot_error = 0.2            # upper limit of what spot checks leave possible
+
 # Keys of the review, by the names of docs/keys.md. A person's own settings come after these.
 # [keys]
 # undo = "U"
@@ -45,7 +53,7 @@ format = 1
 "#;
 
 /// The settings of a campaign.
-#[derive(Debug, Clone, PartialEq, Eq)]
+#[derive(Debug, Clone, PartialEq)]
 pub struct CampaignSettings {
     /// A title for masks and reports.
     pub title: Option<String>,
@@ -53,6 +61,8 @@ pub struct CampaignSettings {
     pub vocabulary: Vocabulary,
     /// What is made of the producer's word on quality.
     pub quality: QualityMap,
+    /// Within which limits granules are offered for signing off together.
+    pub sign_off: SignOffLimits,
     /// Keys of this campaign's own.
     pub keys: Vec<KeySetting>,
     /// Settings that this version does not know, in words.
@@ -65,6 +75,7 @@ impl Default for CampaignSettings {
             title: None,
             vocabulary: Vocabulary::released(),
             quality: QualityMap::default(),
+            sign_off: SignOffLimits::default(),
             keys: Vec::new(),
             problems: Vec::new(),
         }
@@ -80,6 +91,8 @@ struct Typed {
     flag: Vec<FlagExtension>,
     #[serde(default)]
     quality: BTreeMap<String, BTreeMap<String, String>>,
+    #[serde(default)]
+    sign_off: SignOffLimits,
     #[serde(flatten)]
     unknown: toml::Table,
 }
@@ -104,10 +117,18 @@ impl CampaignSettings {
         let vocabulary =
             Vocabulary::with_extensions(&typed.flag).map_err(|error| error.to_string())?;
         let quality = QualityMap::read(typed.quality, &vocabulary)?;
+        let sign_off = typed.sign_off.checked()?;
         let keys = KeySetting::parse(text, SETTINGS_FILE)?;
         let unknown = typed.unknown.keys().filter(|key| *key != "keys");
         let problems = unknown.map(|key| format!("unknown setting `{key}` in {SETTINGS_FILE}"));
-        Ok(Self { title: typed.title, vocabulary, quality, keys, problems: problems.collect() })
+        Ok(Self {
+            title: typed.title,
+            vocabulary,
+            quality,
+            sign_off,
+            keys,
+            problems: problems.collect(),
+        })
     }
 
     /// Reads the settings of a campaign folder; a folder without the file has the defaults.

@@ -4,7 +4,7 @@ use std::collections::HashMap;
 
 use jiff::Timestamp;
 
-use super::{Act, Decision, DecisionId};
+use super::{Act, Decision, DecisionId, SpotCheck};
 
 /// Decisions in the one order in which everybody folds them, and which of them stand.
 pub(super) struct Ordered<'a> {
@@ -109,6 +109,31 @@ pub fn redo_target(decisions: &[Decision], person: &str) -> Option<DecisionId> {
     }
     None
 }
+
+/// The spot checks that stand, in any order of the decisions.
+pub fn spot_checks(decisions: &[Decision]) -> Vec<&SpotCheck> {
+    let ordered = Ordered::new(decisions);
+    let checks = ordered.standing_ones().filter_map(|(_, decision)| match &decision.act {
+        Act::SpotCheck(check) if decision.by_person() => Some(check),
+        _ => None,
+    });
+    checks.collect()
+}
+
+/// The rulebook whose tests' word stands as the latest: its name and fingerprint.
+pub fn screened_by(decisions: &[Decision]) -> Option<String> {
+    let ordered = Ordered::new(decisions);
+    let mut latest_first = ordered.standing_ones().rev();
+    latest_first.find_map(|(_, decision)| match (&decision.act, decision.by_person()) {
+        (Act::Assess { .. }, false) => {
+            decision.why.as_deref()?.strip_prefix(SCREENED_BY).map(str::to_owned)
+        }
+        _ => None,
+    })
+}
+
+/// What the reason of a test's assessment begins with, before the rulebook.
+pub const SCREENED_BY: &str = "rulebook ";
 
 /// When a person last decided about a granule, for undo and redo across granules.
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]

@@ -33,6 +33,7 @@ mod replay;
 mod replay_tests;
 mod review_state;
 mod rulebook_changes;
+mod sign_off_limits;
 mod spot_check;
 mod state;
 mod vocabulary;
@@ -43,7 +44,9 @@ pub use campaign_settings::{CampaignSettings, SETTINGS_FILE};
 pub use clopper_pearson::clopper_pearson;
 pub use decision::{Act, ChannelName, Decision, DecisionId, FlagAt, Origin, PRODUCER, Ruling};
 pub use footprint_set::FootprintSet;
-pub use history::{OwnTimes, own_times, redo_target, standing, undo_target};
+pub use history::{
+    OwnTimes, SCREENED_BY, own_times, redo_target, screened_by, spot_checks, standing, undo_target,
+};
 pub use key_settings::KeySetting;
 pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};
 pub use ledger_reader::{LedgerProblem, LedgerReading, Loss, read_ledgers};
@@ -52,6 +55,7 @@ pub use quality_map::{QualityMap, Treatment};
 pub use replay::Replay;
 pub use review_state::{GranuleState, ReviewState};
 pub use rulebook_changes::RulebookChange;
+pub use sign_off_limits::SignOffLimits;
 pub use spot_check::{ErrorRate, SpotCheck, Stratum, pooled};
 pub use state::{ChannelFlags, Counts, DOUBTFUL, FlagState};
 pub use vocabulary::{FlagExtension, FlagKind, Scope, Vocabulary, VocabularyError};

@@ -34,6 +34,19 @@ pub fn rulebook_of(campaign: &Campaign) -> Result<Rulebook, NoRulebook> {
     parsed.map_err(|mistakes| NoRulebook::Mistaken { file, mistakes })
 }
 
+/// The name and fingerprint of the campaign's rulebook, as ledgers and spot checks name it.
+///
+/// # Errors
+/// As for [`rulebook_of`].
+pub fn rulebook_name(campaign: &Campaign) -> Result<String, NoRulebook> {
+    Ok(name_of(&rulebook_of(campaign)?))
+}
+
+/// A rulebook's name and fingerprint.
+pub fn name_of(rulebook: &Rulebook) -> String {
+    format!("{} ({})", rulebook.name, rulebook.fingerprint)
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

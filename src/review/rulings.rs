@@ -2,6 +2,7 @@
 
 use jiff::Timestamp;
 
+use super::rulebook_of::name_of;
 use super::{Record, Refusal};
 use crate::flags::{Act, DOUBTFUL, FlagAt, FootprintSet, ReviewState, Ruling};
 use crate::screening::Screened;
@@ -126,7 +127,7 @@ impl Record {
             withdrawn.push(FlagAt { flag: DOUBTFUL.to_owned(), footprints: settled });
         }
         let why = speakers(screened, &judged);
-        let rulebook = format!("{} ({})", screened.rulebook.name, screened.rulebook.fingerprint);
+        let rulebook = name_of(&screened.rulebook);
         let act = Act::Judge { ruling, rulebook, given, withdrawn, footprints: judged };
         self.decide(act, why, now);
         ruled

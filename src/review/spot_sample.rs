@@ -4,6 +4,7 @@ use rand::SeedableRng;
 use rand::seq::SliceRandom;
 use rand_chacha::ChaCha8Rng;
 
+use super::rulebook_of::name_of;
 use crate::flags::{FlagKind, FootprintSet, SpotCheck, Stratum, Vocabulary};
 use crate::screening::Screened;
 
@@ -55,7 +56,7 @@ pub fn draw_sample(
         drawn.extend(chosen.iter().map(|at| (*at, is_flagged)));
     }
     drawn.shuffle(&mut random);
-    let rulebook = format!("{} ({})", screened.rulebook.name, screened.rulebook.fingerprint);
+    let rulebook = name_of(&screened.rulebook);
     SpotSample { seed, rulebook, plain, drawn }
 }
 

@@ -4,9 +4,12 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use jiff::Timestamp;
 
+use super::rulebook_of::name_of;
 use super::spectra_decide::spectra_acts;
 use super::{Producer, Record, Refusal};
-use crate::flags::{Act, DOUBTFUL, Decision, DecisionId, FootprintSet, Origin, PRODUCER, Scope};
+use crate::flags::{
+    Act, DOUBTFUL, Decision, DecisionId, FootprintSet, Origin, PRODUCER, SCREENED_BY, Scope,
+};
 use crate::screening::Screened;
 
 /// What was written down.
@@ -52,7 +55,7 @@ pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     acts.push((flag_act(DOUBTFUL, doubtful), Some(why)));
     let assessed = all().filter(|at| screened.assessed[*at]).collect();
     let rulebook = &screened.rulebook;
-    let why = format!("rulebook {} ({})", rulebook.name, rulebook.fingerprint);
+    let why = format!("{SCREENED_BY}{}", name_of(rulebook));
     acts.push((Act::Assess { footprints: assessed }, Some(why)));
     acts.retain(|(act, _)| act.footprints().is_some_and(|footprints| !footprints.is_empty()));
     let of_set = screened.examined.iter().flat_map(spectra_acts);

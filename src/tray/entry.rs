@@ -2,7 +2,10 @@
 
 use std::path::{Path, PathBuf};
 
-use crate::flags::{Counts, Decision, FlagState, GranuleState, OwnTimes, Vocabulary, own_times};
+use crate::flags::{
+    Counts, Decision, FlagState, GranuleState, OwnTimes, SpotCheck, Vocabulary, own_times,
+    screened_by, spot_checks,
+};
 use crate::system::clean_text;
 
 /// How far a granule's review has come, as its ledgers say.
@@ -14,6 +17,10 @@ pub struct Standing {
     pub counts: Option<Counts>,
     /// Footprints that tests leave in doubt and no person has settled, where tests have run.
     pub in_doubt: Option<usize>,
+    /// The rulebook whose decisions stand, by name and fingerprint, if any does.
+    pub tests: Option<String>,
+    /// The spot checks that stand.
+    pub spot_checks: Vec<SpotCheck>,
     /// When the person last decided about it; kept up while it is not on the table.
     pub own: OwnTimes,
 }
@@ -46,6 +53,8 @@ impl Standing {
             state: state.granule,
             in_doubt: screened.then_some(counts.in_doubt),
             counts: Some(counts),
+            tests: screened_by(decisions),
+            spot_checks: spot_checks(decisions).into_iter().cloned().collect(),
             own: own_times(decisions, person),
         }
     }

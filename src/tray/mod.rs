@@ -4,8 +4,10 @@
 //!
 //! **Never** draws.
 
+mod by_rule;
 mod entry;
 mod list;
 
+pub use by_rule::{Offer, reason};
 pub use entry::{Entry, Standing};
 pub use list::Tray;

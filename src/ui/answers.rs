@@ -10,6 +10,7 @@ use crate::tray::Standing;
 
 use super::app::{App, Table};
 use super::bench::{Bench, Quality, RecordState};
+use super::by_rule;
 use super::colour::Tone;
 use super::deciding;
 use super::jobs::{Answer, Job};
@@ -30,6 +31,7 @@ use super::undoing;
 pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
     match answer {
         Answer::Standing { entry, found } => standing(app, entry, found),
+        Answer::SignedOff { entry, found } => by_rule::signed(app, entry, found),
         Answer::Opened { request, found } => opened(app, request, found),
         Answer::Filling { request, share, of_layer } => filling(app, request, share, of_layer),
         Answer::Filled { request, found } => filled(app, request, found),

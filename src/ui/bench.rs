@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 use std::sync::Arc;
 
-use crate::flags::FootprintSet;
+use crate::flags::{FootprintSet, screened_by};
 use crate::granule::Channel;
 use crate::review::{Record, Review, Spectrum};
 use crate::screening::Screened;
@@ -216,6 +216,8 @@ impl Bench {
             state: record.state().granule,
             counts: Some(record.counts().clone()),
             in_doubt,
+            tests: screened_by(record.decisions()),
+            spot_checks: record.spot_checks().cloned().collect(),
             ..Standing::default()
         }
     }

@@ -58,6 +58,13 @@ pub enum Job {
         /// The file.
         path: PathBuf,
     },
+    /// Sign a granule off that is not on the table, if it still lies within the limits.
+    SignOff {
+        /// The entry of the Tray.
+        entry: usize,
+        /// The file.
+        path: PathBuf,
+    },
     /// Open a granule.
     Open {
         /// The request.
@@ -256,6 +263,13 @@ pub enum Answer {
         /// The entry.
         entry: usize,
         /// What was found.
+        found: Result<Standing, String>,
+    },
+    /// A granule was signed off by rule, or was not.
+    SignedOff {
+        /// The entry.
+        entry: usize,
+        /// What its ledgers say now.
         found: Result<Standing, String>,
     },
     /// A granule was opened, or could not be.

@@ -11,6 +11,7 @@
 mod answers;
 pub mod app;
 pub mod bench;
+mod by_rule;
 mod bench_parts;
 mod channel_flags;
 mod channels;

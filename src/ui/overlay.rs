@@ -2,6 +2,8 @@
 
 use crate::flags::{ChannelName, FootprintSet};
 
+use crate::tray::Offer;
+
 use super::line::Line;
 
 /// What takes the keys before the panes do.
@@ -20,6 +22,8 @@ pub enum Overlay {
     Flags(FlagPrompt),
     /// Whether the rest counts as looked at when the granule is signed off.
     SignOff,
+    /// Whether to sign granules off together.
+    ByRule(Offer),
     /// Decisions could not be written: leave all the same?
     LeaveAnyway,
 }

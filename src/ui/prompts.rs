@@ -3,6 +3,7 @@
 use crate::flags::Scope;
 
 use super::app::App;
+use super::by_rule;
 use super::deciding;
 use super::jobs::Job;
 use super::key::{Code, Key};
@@ -53,6 +54,7 @@ pub fn press(app: &mut App, key: Key) -> Vec<Job> {
         Overlay::Flags(_) if escape => Vec::new(),
         Overlay::Flags(prompt) => choose(app, key, prompt),
         Overlay::SignOff => signing::answer(app, key),
+        Overlay::ByRule(offer) => by_rule::answer(app, key, offer),
         Overlay::LeaveAnyway => answer_leave(app, key),
     }
 }

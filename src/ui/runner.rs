@@ -50,7 +50,7 @@ fn lane_of(job: &Job) -> Lane {
         Job::Beside { .. } => Lane::Beside,
         Job::Along { .. } => Lane::Along,
         Job::Screen { .. } => Lane::Screen,
-        Job::Standing { .. } => Lane::InTurn,
+        Job::Standing { .. } | Job::SignOff { .. } => Lane::InTurn,
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {
             Lane::Alone
         }

@@ -8,7 +8,7 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, channel_flags, deciding, doubting, ledger, looking, moving, picking, prompts,
+    answers, by_rule, channel_flags, deciding, doubting, ledger, looking, moving, picking, prompts,
     screening, spot, spreading, strip, tracing, turning, typing,
 };
 
@@ -104,6 +104,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::Adopt => spreading::ask_to_adopt(app),
         A::Box | A::Polygon | A::Join | A::Invert | A::Reselect => picking::pick(app, action),
         A::SignOff | A::Reopen => deciding::decide(app, action),
+        A::ByRule => by_rule::ask(app),
         A::SpotCheck => spot::begin(app, spot::USUAL),
         A::RunTests => screening::start(app),
         A::NextCase | A::PreviousCase | A::Accept | A::Overrule => doubting::doubt(app, action),

@@ -7,11 +7,12 @@ use std::time::{Duration, Instant};
 use crate::flags::read_ledgers;
 use crate::granule::{GranuleError, VariableRole};
 use crate::review::{
-    ExportedBy, Record, ReferenceSpectrum, Review, adopt_threshold, read_bases, rulebook_of,
+    ExportedBy, Record, ReferenceSpectrum, Review, adopt_threshold, read_bases, rulebook_name,
+    rulebook_of,
 };
 use crate::screening::Screened;
 use crate::system::{Cancel, clean_text};
-use crate::tray::Standing;
+use crate::tray::{Standing, reason};
 
 use super::app::Outside;
 use super::bench::Quality;
@@ -53,6 +54,9 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         }
         Job::Standing { entry, path } => {
             send(Answer::Standing { entry: *entry, found: standing(path, outside) });
+        }
+        Job::SignOff { entry, path } => {
+            send(Answer::SignedOff { entry: *entry, found: sign_off(path, outside) });
         }
         Job::Open { request, path } => {
             let found = Review::open(&outside.opening, path);
@@ -141,6 +145,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Alike { request, .. } => Answer::Alike { request: *request, found: Err(why()) },
         Job::Adopt { request, .. } => Answer::Adopted { request: *request, found: Err(why()) },
         Job::Standing { entry, .. } => Answer::Standing { entry: *entry, found: Err(why()) },
+        Job::SignOff { entry, .. } => Answer::SignedOff { entry: *entry, found: Err(why()) },
         Job::Open { request, .. } => Answer::Opened { request: *request, found: Err(why()) },
         Job::Fill { request, .. } => Answer::Filled { request: *request, found: Err(why()) },
         Job::Record { request, .. } => Answer::Record { request: *request, found: Err(why()) },
@@ -274,6 +279,30 @@ fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
     let vocabulary = &outside.campaign.settings().vocabulary;
     let footprints = review.granule().footprints().count();
     Ok(Standing::of(footprints, &decisions, vocabulary, &outside.author.person))
+}
+
+/// How long a slow disk may take before a sign-off counts as not written.
+const PATIENCE: Duration = Duration::from_secs(60);
+
+/// Signs a granule off, unless somebody has changed it meanwhile so that it is not within the limits
+/// any more.
+fn sign_off(path: &Path, outside: &Outside) -> Result<Standing, String> {
+    let rulebook = rulebook_name(&outside.campaign).map_err(|error| error.to_string())?;
+    let limits = &outside.campaign.settings().sign_off;
+    let review = Review::open(&outside.opening, path).map_err(in_words)?;
+    let (mut record, _) = record(&review, outside)?;
+    let standing = |record: &Record| {
+        let footprints = review.granule().footprints().count();
+        let vocabulary = &outside.campaign.settings().vocabulary;
+        Standing::of(footprints, record.decisions(), vocabulary, &outside.author.person)
+    };
+    if let Some(reason) = reason(&standing(&record), limits, &rulebook) {
+        return Err(reason);
+    }
+    record.sign_off(false, (outside.clock)()).map_err(|refusal| refusal.to_string())?;
+    let signed = standing(&record);
+    record.close(PATIENCE).map_err(|error| error.to_string())?;
+    Ok(signed)
 }
 
 fn export(

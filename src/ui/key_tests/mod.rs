@@ -1,6 +1,7 @@
 //! Start state, keys, expected.
 
 mod channel_flags;
+mod by_rule;
 mod deciding;
 mod doubting;
 mod looking;

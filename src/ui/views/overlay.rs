@@ -5,6 +5,7 @@ use ratatui::layout::Rect;
 
 use crate::screening::Threshold;
 use crate::ui::app::App;
+use crate::ui::by_rule;
 use crate::ui::overlay::{FlagPrompt, LinePrompt, Overlay, Purpose};
 use crate::ui::panes::command::{self, CommandView, Completion};
 use crate::ui::panes::help::{self, HelpView};
@@ -38,6 +39,11 @@ pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Bu
             let lines = signing::summary(app);
             let view =
                 PromptView::Answers { title: "Sign off: was the rest looked at?", lines: &lines };
+            prompt::draw(&view, theme, screen, buffer);
+        }
+        Overlay::ByRule(offer) => {
+            let lines = by_rule::lines(app, offer);
+            let view = PromptView::Answers { title: "Sign off by rule?", lines: &lines };
             prompt::draw(&view, theme, screen, buffer);
         }
         Overlay::LeaveAnyway => {

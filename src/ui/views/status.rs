@@ -78,6 +78,8 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
     let selecting = app.bench().is_some_and(|bench| bench.selecting.is_on());
     let actions: &[(Action, &'static str)] = if selecting {
         &[
+            (Action::Accept, "accept"),
+            (Action::Overrule, "overrule"),
             (Action::Flag, "flag"),
             (Action::Withdraw, "withdraw"),
             (Action::Assess, "looked at"),
@@ -111,6 +113,7 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
         &[
             (Action::Help, "help"),
             (Action::NextPane, "or 1-7 pane"),
+            (Action::NextCase, "doubt"),
             (Action::Command, "command"),
             (Action::Flag, "flag"),
             (Action::Box, "box"),

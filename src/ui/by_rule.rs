@@ -1,0 +1,125 @@
+//! Signing off by rule: the granules within the person's limits, together, after a summary.
+
+use std::path::PathBuf;
+
+use crate::review::rulebook_name;
+use crate::tray::{Offer, Standing};
+
+use super::app::App;
+use super::colour::Tone;
+use super::deciding;
+use super::jobs::Job;
+use super::key::{Code, Key};
+use super::overlay::Overlay;
+use super::update::is_yes;
+
+/// Names that a summary lists before it counts the rest.
+const MOST_NAMES: usize = 6;
+
+/// Shows which granules lie within the limits and asks whether to sign them off.
+pub fn ask(app: &mut App) -> Vec<Job> {
+    if let Some(why) = &app.outside.look_only {
+        let words = format!("looking only: {why}");
+        app.warn(words);
+        return Vec::new();
+    }
+    match rulebook_name(&app.outside.campaign) {
+        Ok(rulebook) => {
+            deciding::update_tray(app);
+            let offer = app.tray.offer(&app.outside.campaign.settings().sign_off, &rulebook);
+            app.overlay = Overlay::ByRule(offer);
+        }
+        Err(why) => app.warn(why.to_string()),
+    }
+    Vec::new()
+}
+
+/// Takes the answer.
+pub fn answer(app: &mut App, key: Key, offer: Offer) -> Vec<Job> {
+    match key.code {
+        _ if is_yes(key) && !offer.within.is_empty() => sign(app, &offer),
+        Code::Char('n' | 'N') | Code::Esc | Code::Enter => {
+            app.say("nothing was signed off");
+            Vec::new()
+        }
+        _ => {
+            app.overlay = Overlay::ByRule(offer);
+            Vec::new()
+        }
+    }
+}
+
+/// The granule on the table is signed off here, the others beside the keys.
+fn sign(app: &mut App, offer: &Offer) -> Vec<Job> {
+    let on_table = app.current_entry();
+    let mut others: Vec<(usize, PathBuf)> = Vec::new();
+    for number in &offer.within {
+        if Some(*number) == on_table && app.bench().is_some() {
+            deciding::change(app, |record, now| {
+                record.sign_off(false, now).map(|()| "signed off".to_owned())
+            });
+        } else if let Some(entry) = app.tray.entry(*number) {
+            others.push((*number, entry.path.clone()));
+        }
+    }
+    if others.is_empty() {
+        return Vec::new();
+    }
+    app.say(format!("signing {} granules off…", offer.within.len()));
+    others.into_iter().map(|(entry, path)| Job::SignOff { entry, path }).collect()
+}
+
+/// A granule was signed off beside the keys, or was not.
+pub fn signed(app: &mut App, entry: usize, found: Result<Standing, String>) -> Vec<Job> {
+    let name = app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default();
+    match found {
+        Ok(standing) => {
+            app.tray.set_standing(entry, standing);
+            app.say(format!("{name}: signed off by rule"));
+        }
+        Err(why) => app.message = (format!("{name}: not signed off: {why}"), Tone::Bad),
+    }
+    Vec::new()
+}
+
+/// What is offered, a line each.
+pub fn lines(app: &App, offer: &Offer) -> Vec<String> {
+    let limits = &app.outside.campaign.settings().sign_off;
+    let percent = |share: f64| format!("{:.1} %", 100.0 * share);
+    let mut lines = vec![
+        format!(
+            "limits ([sign_off] in campaign.toml): in doubt {}, not assessed {}, bad spectra {}, \
+             bad channels {}, error {}",
+            percent(limits.doubt),
+            percent(limits.not_assessed),
+            percent(limits.bad_spectra),
+            limits.flagged_channels,
+            percent(limits.spot_error)
+        ),
+        format!("spot checks without flag: {}", offer.spot[0].words()),
+        format!("spot checks with flag: {}", offer.spot[1].words()),
+        String::new(),
+        format!("within: {}", names(app, &offer.within)),
+    ];
+    for (reason, entries) in &offer.beyond {
+        lines.push(format!("{reason}: {}", names(app, entries)));
+    }
+    lines.push(String::new());
+    match offer.within.len() {
+        0 => lines.push("Esc: there is nothing to be signed off by rule".to_owned()),
+        count => lines.push(format!("y: sign the {count} off; the tests answer for them   n: not")),
+    }
+    lines
+}
+
+fn names(app: &App, entries: &[usize]) -> String {
+    let name = |number: &usize| app.tray.entry(*number).map(|entry| entry.name.as_str());
+    let shown: Vec<&str> = entries.iter().take(MOST_NAMES).filter_map(name).collect();
+    match entries.len() {
+        0 => "none".to_owned(),
+        all if all > MOST_NAMES => {
+            format!("{}: {} and {} more", all, shown.join(", "), all - MOST_NAMES)
+        }
+        all => format!("{all}: {}", shown.join(", ")),
+    }
+}
