@@ -345,6 +345,10 @@ impl Cube {
     }
 }
 
+/// Spectra that are gone through together where channels are taken out of them: values of so many
+/// footprints fill a line of the processor's cache.
+const SIDE_BY_SIDE: usize = 8;
+
 impl BandCube {
     /// A channel's value out of one footprint's stored values.
     #[inline]
@@ -385,11 +389,16 @@ impl BandCube {
         with_values!(
             samples,
             values => {
-                let spectra = values[first * self.channels..].chunks_exact(self.channels);
-                for (at, spectrum) in place.zip(spectra) {
-                    let stored = |channel: usize| spectrum[channel] as f64;
+                let spectra = &values[first * self.channels..];
+                for start in (0..place.len()).step_by(SIDE_BY_SIDE) {
+                    let some = start..(start + SIDE_BY_SIDE).min(place.len());
                     for (row, &channel) in channels.iter().enumerate() {
-                        out[row * length + at] = self.value(channel, stored);
+                        let begin = row * length + place.start;
+                        let out = &mut out[begin + some.start..begin + some.end];
+                        for (out, at) in out.iter_mut().zip(some.clone()) {
+                            let spectrum = &spectra[at * self.channels..][..self.channels];
+                            *out = self.value(channel, |channel| spectrum[channel] as f64);
+                        }
                     }
                 }
             },

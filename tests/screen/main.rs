@@ -8,6 +8,7 @@ mod budget;
 mod care;
 mod killed;
 mod main_job;
+mod memory;
 mod terminal;
 
 use std::path::{Path, PathBuf};
