@@ -1,12 +1,20 @@
 //! Footprints and their layers as CSV or JSON lines.
 
+use std::fmt::Write as _;
 use std::io::{self, Write};
 
+use rayon::prelude::*;
 use serde::Serialize;
 use serde::ser::{SerializeMap, Serializer};
 
 use crate::granule::{FootprintGrid, Geolocation, Granule};
 use crate::layers::Layer;
+
+/// Rows that one thread makes into text at a time.
+const BLOCK: usize = 256;
+
+/// Blocks that are held before they are written.
+const BLOCKS_AT_ONCE: usize = 64;
 
 /// How a table is written.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -82,24 +90,40 @@ pub fn write_rows(
     out: &mut dyn Write,
 ) -> io::Result<()> {
     let (grid, place) = (granule.footprints(), granule.geolocation());
-    let rows =
-        (0..grid.count()).map(|footprint| Row { heading, file, grid, place, layers, footprint });
-    match form {
-        Form::Csv => {
-            let mut writer = csv::Writer::from_writer(out);
-            for row in rows {
-                writer.write_record(row.cells()).map_err(stream_error)?;
-            }
-            writer.flush()
+    let row = |footprint| Row { heading, file, grid, place, layers, footprint };
+    let lines = |start: usize| {
+        let rows = (start..(start + BLOCK).min(grid.count())).map(row);
+        match form {
+            Form::Csv => csv_lines(rows),
+            Form::JsonLines => json_lines(rows),
         }
-        Form::JsonLines => {
-            for row in rows {
-                serde_json::to_writer(&mut *out, &row)?;
-                out.write_all(b"\n")?;
-            }
-            Ok(())
+    };
+    let starts: Vec<usize> = (0..grid.count()).step_by(BLOCK).collect();
+    for some in starts.chunks(BLOCKS_AT_ONCE) {
+        let blocks: Vec<io::Result<Vec<u8>>> = some.par_iter().map(|start| lines(*start)).collect();
+        for block in blocks {
+            out.write_all(&block?)?;
         }
     }
+    Ok(())
+}
+
+fn csv_lines<'t>(rows: impl Iterator<Item = Row<'t>>) -> io::Result<Vec<u8>> {
+    let mut writer = csv::Writer::from_writer(Vec::new());
+    let mut buffer = String::new();
+    for row in rows {
+        row.write_cells(&mut writer, &mut buffer).map_err(stream_error)?;
+    }
+    writer.into_inner().map_err(|error| error.into_error())
+}
+
+fn json_lines<'t>(rows: impl Iterator<Item = Row<'t>>) -> io::Result<Vec<u8>> {
+    let mut lines = Vec::new();
+    for row in rows {
+        serde_json::to_writer(&mut lines, &row)?;
+        lines.push(b'\n');
+    }
+    Ok(lines)
 }
 
 struct Row<'t> {
@@ -112,14 +136,26 @@ struct Row<'t> {
 }
 
 impl Row<'_> {
-    fn cells(&self) -> Vec<String> {
-        let mut cells = Vec::new();
-        cells.extend(self.heading.file.then(|| self.file.to_owned()));
-        cells.extend(self.grid.position(self.footprint).iter().map(usize::to_string));
-        cells.extend(self.heading.latitude.then(|| cell(self.value(&self.place.latitude))));
-        cells.extend(self.heading.longitude.then(|| cell(self.value(&self.place.longitude))));
-        cells.extend(self.layers.iter().map(|layer| cell(layer.values[self.footprint])));
-        cells
+    fn write_cells(
+        &self,
+        writer: &mut csv::Writer<Vec<u8>>,
+        buffer: &mut String,
+    ) -> Result<(), csv::Error> {
+        if self.heading.file {
+            writer.write_field(self.file)?;
+        }
+        for index in self.grid.position(self.footprint) {
+            writer.write_field(index.to_string())?;
+        }
+        let latitude = self.heading.latitude.then(|| self.value(&self.place.latitude));
+        let longitude = self.heading.longitude.then(|| self.value(&self.place.longitude));
+        let layers = self.layers.iter().map(|layer| layer.values[self.footprint]);
+        for value in latitude.into_iter().chain(longitude).chain(layers) {
+            buffer.clear();
+            write_cell(value, buffer);
+            writer.write_field(&*buffer)?;
+        }
+        writer.write_record(None::<&[u8]>)
     }
 
     fn value(&self, field: &Option<Vec<f64>>) -> f64 {
@@ -166,16 +202,24 @@ pub fn stream_error(error: csv::Error) -> io::Error {
 
 /// A number for a cell: the shortest digits that read back as the same number; empty where missing.
 pub fn cell(value: f64) -> String {
-    if !value.is_finite() {
-        String::new()
+    let mut cell = String::new();
+    write_cell(value, &mut cell);
+    cell
+}
+
+/// The same, behind what is in `out`.
+fn write_cell(value: f64, out: &mut String) {
+    // Writing to a string does not fail.
+    let _ = if !value.is_finite() {
+        Ok(())
     } else if value == 0.0 {
         // Never "-0".
-        "0".to_owned()
+        out.write_char('0')
     } else if (1e-5..1e17).contains(&value.abs()) {
-        value.to_string()
+        write!(out, "{value}")
     } else {
-        format!("{value:e}")
-    }
+        write!(out, "{value:e}")
+    };
 }
 
 /// A number for JSON, which has none for missing.

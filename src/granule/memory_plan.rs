@@ -32,10 +32,11 @@ impl MemoryPlan {
         if all <= self.budget { all } else { self.budget / 2 }
     }
 
-    /// Bytes of the slabs that pass by: of more than a few nobody asks again soon.
-    pub fn passing(&self) -> u64 {
-        const ENOUGH: u64 = 256 << 20;
-        (self.budget / 4).min(ENOUGH)
+    /// Bytes of the slabs that pass by, of which the largest has `slab` bytes. Of more than a few for
+    /// each thread nobody asks again soon, and memory that is given back is the fastest to be had.
+    pub fn passing(&self, slab: u64) -> u64 {
+        let few = slab.saturating_mul(4 * rayon::current_num_threads() as u64);
+        (self.budget / 4).min(few)
     }
 }
 
@@ -48,7 +49,8 @@ mod tests {
         for threads in [1, 2, 64] {
             let plan = MemoryPlan::new(1 << 20, threads);
             let in_hand = plan.slab * threads as u64;
-            assert!(plan.kept(1 << 30) + plan.passing() + in_hand <= plan.budget, "{threads}");
+            let passing = plan.passing(plan.slab);
+            assert!(plan.kept(1 << 30) + passing + in_hand <= plan.budget, "{threads}");
         }
         let plan = MemoryPlan::new(1000, 2);
         assert_eq!((plan.kept(1000), plan.kept(1001)), (1000, 500));

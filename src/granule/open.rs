@@ -108,6 +108,7 @@ pub fn open(
         is_geolocation,
     );
     let cube = Arc::new(Cube::new(&grid, &bands, storage, memory));
+    let largest_slab = (0..bands.len()).map(|band| cube.slab_bytes(band, 0)).max().unwrap_or(0);
     Ok(Granule {
         footprints: grid,
         dimensions,
@@ -120,7 +121,7 @@ pub fn open(
         calculated,
         problems,
         cube,
-        passing: PassingSlabs::new(memory.passing()),
+        passing: PassingSlabs::new(memory.passing(largest_slab)),
         identity: OnceLock::new(),
         reader,
     })
