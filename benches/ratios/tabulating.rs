@@ -57,7 +57,7 @@ pub fn section(
 
 fn tabulate(file: &Path, table: &Path, wavenumbers: &[f64]) -> Result<(), std::io::Error> {
     let mut command = Command::new(PROGRAM);
-    command.arg("tabulate").arg(file).arg("--quiet").arg("--output").arg(table);
+    command.arg("tabulate").arg(file).arg("--quiet").stdout(std::fs::File::create(table)?);
     for wavenumber in wavenumbers {
         command.args(["--layer", &format!("bt({wavenumber})")]);
     }

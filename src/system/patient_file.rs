@@ -27,10 +27,18 @@ impl PatientFile {
         Ok(Self { file: Arc::new(file), limit })
     }
 
-    /// The stamp of the open file as it is now.
-    pub fn stamp(&self) -> io::Result<FileStamp> {
-        let file = Arc::clone(&self.file);
-        in_time(self.limit, move || Ok(FileStamp::from(&file.metadata()?)))
+    /// The stamp of the open file as it is now; that of the file at `path`, symbolic links followed,
+    /// where that is another one or has changed since.
+    ///
+    /// # Errors
+    /// There is no file any more at `path`, or the file system does not answer.
+    pub fn stamp_if_still_at(&self, path: &Path) -> io::Result<FileStamp> {
+        let (file, path) = (Arc::clone(&self.file), path.to_owned());
+        in_time(self.limit, move || {
+            let open = FileStamp::from(&file.metadata()?);
+            let there = FileStamp::of(&path)?;
+            Ok(if there == open { open } else { there })
+        })
     }
 
     /// Fills `bytes` from the place `at` on.
@@ -123,7 +131,12 @@ mod tests {
         assert_eq!((bytes.len(), &bytes[..100]), (1000, &content[199_900..]));
         let cut = file.read_exact_at(&mut bytes, 199_900).unwrap_err();
         assert_eq!(cut.kind(), io::ErrorKind::UnexpectedEof);
-        assert_eq!(file.stamp().unwrap(), stamp_in_time(&path, LONG).unwrap());
+        let stamp = file.stamp_if_still_at(&path).unwrap();
+        assert_eq!(stamp, stamp_in_time(&path, LONG).unwrap());
+        std::fs::rename(&path, folder.path().join("moved")).unwrap();
+        assert!(file.stamp_if_still_at(&path).is_err());
+        std::fs::write(&path, b"other").unwrap();
+        assert_ne!(file.stamp_if_still_at(&path).unwrap(), stamp);
     }
 
     #[test]

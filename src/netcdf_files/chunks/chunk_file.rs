@@ -16,14 +16,14 @@ pub struct ChunkFile {
 
 impl ChunkFile {
     /// Opens the file at `path`, whose file system has `limit` for each thing that is asked of it.
-    /// Whether it is the right file, [`Self::stamp`] tells.
+    /// Whether it is the right file, [`Self::stamp_if_still_at`] tells.
     pub fn open(path: &Path, limit: Duration) -> io::Result<Self> {
         Ok(Self { file: PatientFile::open(path, limit)? })
     }
 
-    /// The stamp of the open file as it is now.
-    pub fn stamp(&self) -> io::Result<FileStamp> {
-        self.file.stamp()
+    /// The stamp of the open file as it is now; that of the file at `path` where that is another one.
+    pub fn stamp_if_still_at(&self, path: &Path) -> io::Result<FileStamp> {
+        self.file.stamp_if_still_at(path)
     }
 
     /// Reads the bytes of a chunk into `bytes`.

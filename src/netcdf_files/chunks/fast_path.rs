@@ -10,7 +10,7 @@ use super::chunk_file::ChunkFile;
 use super::decode::{AtWork, Decoder, ScratchPool, Stopped};
 use super::table::{CheckedTable, ChunkTable};
 use crate::netcdf_files::{FileFormat, FileIndex, ReadError, ReadFault, Samples, Variable};
-use crate::system::{Cancel, FileStamp, stamp_in_time};
+use crate::system::{Cancel, FileStamp};
 
 /// Smaller variables, in bytes, come from the reader with one question instead of two.
 const WORTH_ASKING: usize = 256 << 10;
@@ -78,10 +78,7 @@ impl FastPath {
             return Ok(None);
         }
         let Some(table) = self.table(known, variable, ask)? else { return Ok(None) };
-        // Neither another file in its place nor other bytes in the same one.
-        check_unchanged(known, stamp_in_time(known.opened, known.limit))?;
         let file = self.file(known)?;
-        check_unchanged(known, file.stamp())?;
         let decoder = Decoder {
             table: &table,
             file,
@@ -90,8 +87,9 @@ impl FastPath {
             shared: !(demand.urgent || demand.alone),
         };
         let samples = decoder.block(start, count);
-        // Whatever came out of a file that changed meanwhile is worth nothing, good or bad.
-        check_unchanged(known, file.stamp())?;
+        // Whatever came out of a file that has changed is worth nothing, good or bad: neither another
+        // file in its place nor other bytes in the same one.
+        check_unchanged(known, file.stamp_if_still_at(known.opened))?;
         match samples {
             Ok(samples) => Ok(Some(samples)),
             Err(stopped) => {
