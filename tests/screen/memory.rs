@@ -18,12 +18,17 @@ fn start(folder: &Path, memory: &str) -> Session {
     Session::start_with(folder, 140, 44, &arguments, &[clock])
 }
 
+/// The screen without the blanks behind its lines, which depend on what stood there before.
+fn shown(session: &Session) -> String {
+    session.screen().lines().map(|line| line.trim_end().to_owned() + "\n").collect()
+}
+
 /// Waits until both screens are the same and stay so for a while.
 fn expect_same(one: &Session, other: &Session) {
     let begun = Instant::now();
     let mut same = 0;
     while same < 6 {
-        let (here, there) = (one.screen(), other.screen());
+        let (here, there) = (shown(one), shown(other));
         same = if here == there { same + 1 } else { 0 };
         assert!(begun.elapsed() < PATIENCE, "in all memory:\n{here}\nin little:\n{there}");
         thread::sleep(Duration::from_millis(150));
