@@ -36,6 +36,11 @@ pub fn lenders(
             problems.push(Problem::missing(what, &shown, "its fields are missing"));
             continue;
         };
+        if file.canonicalize().ok() == path.canonicalize().ok() {
+            let shown = file.to_string_lossy();
+            problems.push(Problem::note("is the granule itself", &shown, "it lends nothing"));
+            continue;
+        }
         let reader = FileReader::open(&how.program, &file, &how.limits)?;
         let mut own = Vec::new();
         let lender = Lender::join(reader, grid, geolocation, how.within, &mut own)?;
@@ -52,6 +57,10 @@ fn lend(
     geolocation: &mut Geolocation,
     problems: &mut Vec<Problem>,
 ) -> Result<(), GranuleError> {
+    // Fields that are missing everywhere would only keep others from being taken or computed.
+    if lender.matched() == 0 {
+        return Ok(());
+    }
     for field in &FIELDS {
         if geolocation.field(field.name).is_some() {
             continue;
@@ -96,7 +105,8 @@ pub fn calculated(
         if let Some(found) = own.find(problems)? {
             return Ok(Some(found));
         }
-        for (number, lender) in lenders.iter().enumerate() {
+        let usable = lenders.iter().enumerate().filter(|(_, lender)| lender.matched() > 0);
+        for (number, lender) in usable {
             let search = CalculatedSearch {
                 reader: &lender.reader,
                 dimensions: &lender.dimensions,

@@ -189,7 +189,8 @@ fn rest_of(value: i64, meanings: &[FlagMeaning]) -> Option<i64> {
     let codes = meanings.iter().any(|meaning| meaning.value.is_some());
     if codes || meanings.is_empty() {
         let known = meanings.iter().any(|meaning| meaning.holds(value));
-        return (!known && !(meanings.is_empty() && value == 0)).then_some(value);
+        let says_nothing = meanings.is_empty() && value == 0;
+        return Some(value).filter(|_| !known && !says_nothing);
     }
     let known = meanings.iter().fold(0, |bits, meaning| bits | meaning.mask);
     let rest = value & !known;

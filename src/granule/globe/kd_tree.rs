@@ -199,7 +199,7 @@ mod tests {
             radius in 0.0f64..1.5,
             modulus in 1u32..4,
         ) {
-            let accepts = |number: u32| number % modulus == 0;
+            let accepts = |number: u32| number.is_multiple_of(modulus);
             let numbered: Vec<(u32, Vector)> = (0..).zip(points).collect();
             let squared = |point: Vector| dot(minus(point, centre), minus(point, centre));
             let expected = numbered

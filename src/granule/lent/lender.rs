@@ -209,11 +209,14 @@ fn lies_elsewhere(
     Ok((*median > chord(within.metres)).then_some(metres))
 }
 
+/// Degrees north and degrees east of some places.
+type LatitudesAndLongitudes = (Vec<f64>, Vec<f64>);
+
 /// Latitudes and longitudes over a grid.
 fn places(
     over: Over<'_>,
     problems: &mut Vec<Problem>,
-) -> Result<Option<(Vec<f64>, Vec<f64>)>, ReadError> {
+) -> Result<Option<LatitudesAndLongitudes>, ReadError> {
     let [latitude, longitude] = [field("lat"), field("lon")];
     let latitudes = geolocation::read_from(over, latitude, problems)?;
     let longitudes = geolocation::read_from(over, longitude, problems)?;

@@ -126,7 +126,7 @@ fn times_must_be_near_as_well() {
     let granule = joined(|writer| listed(writer, &places, Some(&times)), "10km,100s");
     assert!(same(&temperatures(&granule), &[NONE, 291.0, NONE, NONE, NONE, NONE]));
     let label = granule.lenders()[0].how().label();
-    assert_eq!(label, "by the nearest place within 10 km, 1.6666666666666667 min");
+    assert_eq!(label, "by the nearest place within 10 km, 100 s");
 }
 
 #[test]
@@ -239,6 +239,26 @@ fn a_file_that_cannot_be_joined_says_what_it_lacks() {
     assert!(error.contains("neither the granule's dimensions (line 2, position 3)"), "{error}");
     let error = open(file(plain), vec![file(lend)], "10km").map(|_| ()).unwrap_err().to_string();
     assert!(error.contains("no latitude and longitude"), "{error}");
+}
+
+#[test]
+fn a_file_without_a_place_for_any_footprint_lends_nothing() {
+    let granule = joined(|writer| listed(writer, &[(60.0, 0.0)], None), "10km");
+    assert_eq!(granule.geolocation().surface_temperature, None);
+    assert_eq!(granule.lent_by(0), Vec::<String>::new());
+    assert!(has_problem(&granule, "no footprint has a place in it"));
+}
+
+#[test]
+fn a_granule_lends_nothing_to_itself() {
+    let granule = file(located);
+    let opening = Opening {
+        with: vec![LenderPattern::new(&granule.path)],
+        ..Opening::new(ReaderProgram::in_process())
+    };
+    let opened = opening.open(&granule.path).unwrap();
+    assert!(opened.lenders().is_empty() && opened.calculated(0).is_none());
+    assert!(has_problem(&opened, "the granule itself"));
 }
 
 #[test]

@@ -59,9 +59,12 @@ impl fmt::Display for Within {
             true => write!(out, "{} m", self.metres)?,
             false => write!(out, "{} km", self.metres / 1000.0)?,
         }
-        match self.seconds < 60.0 {
-            true => write!(out, ", {} s", self.seconds),
-            false => write!(out, ", {} min", self.seconds / 60.0),
+        // The largest unit in which it is a whole number.
+        let whole = |worth: &f64| self.seconds >= *worth && self.seconds % worth == 0.0;
+        let units = [("d", 86_400.0), ("h", 3600.0), ("min", 60.0)];
+        match units.iter().find(|(_, worth)| whole(worth)) {
+            Some((name, worth)) => write!(out, ", {} {name}", self.seconds / worth),
+            None => write!(out, ", {} s", self.seconds),
         }
     }
 }
@@ -75,7 +78,11 @@ mod tests {
         let read = |text: &str| text.parse::<Within>().unwrap();
         assert_eq!(read("25km"), Within { metres: 25_000.0, ..Within::default() });
         assert_eq!(read("500 m, 2h"), Within { metres: 500.0, seconds: 7200.0 });
-        assert_eq!(read("30s").to_string(), "10 km, 30 s");
+        for (text, shown) in [("30s", "10 km, 30 s"), ("90s", "10 km, 90 s"), ("3h", "10 km, 3 h")]
+        {
+            assert_eq!(read(text).to_string(), shown);
+        }
+        assert_eq!(Within::default().to_string(), "10 km, 15 min");
         for bad in ["", "10", "km", "10 miles", "-1km", "1km,,", "nankm", "infs"] {
             assert!(bad.parse::<Within>().is_err(), "{bad}");
         }
