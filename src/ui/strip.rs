@@ -29,6 +29,8 @@ pub struct Strip {
     pub text: String,
     /// The layer in each entry of the Tray, or why there is none; nothing where it is not known yet.
     pub granules: Vec<Option<Result<Group, String>>>,
+    /// How many granules are still to be summed up.
+    left: usize,
     /// The request under way.
     request: u64,
     cancel: Cancel,
@@ -40,6 +42,7 @@ impl Default for Strip {
             along: Along::Dimension(0),
             text: String::new(),
             granules: Vec::new(),
+            left: 0,
             request: 0,
             cancel: Cancel::new(),
         }
@@ -47,6 +50,11 @@ impl Default for Strip {
 }
 
 impl Strip {
+    /// How many granules are still to be summed up.
+    pub fn left(&self) -> usize {
+        self.left
+    }
+
     /// For places that are kept: the dimension's number; granules stand behind the last.
     pub fn number(&self) -> usize {
         match self.along {
@@ -111,6 +119,7 @@ pub fn refresh(app: &mut App) -> Vec<Job> {
     let usable = entries.filter(|(_, entry)| entry.error.is_none());
     let paths: Vec<(usize, PathBuf)> =
         usable.map(|(number, entry)| (number, entry.path.clone())).collect();
+    strip.left = paths.len();
     vec![Job::Along { request, text, paths, cancel: strip.cancel.clone() }]
 }
 
@@ -119,6 +128,7 @@ pub fn take(app: &mut App, request: u64, entry: usize, found: Result<Option<Grou
     if app.strip.request != request {
         return;
     }
+    app.strip.left = app.strip.left.saturating_sub(1);
     if let Some(slot) = app.strip.granules.get_mut(entry) {
         *slot = Some(found.and_then(|group| group.ok_or_else(|| "no values".to_owned())));
     }
@@ -126,14 +136,12 @@ pub fn take(app: &mut App, request: u64, entry: usize, found: Result<Option<Grou
 
 /// Gives up summing granules; false where none is under way.
 pub fn give_up(app: &mut App) -> bool {
-    let under_way = app.strip.along == Along::Granules
-        && !app.strip.cancel.is_cancelled()
-        && app.strip.granules.iter().any(Option::is_none)
-        && app.strip.granules.iter().any(Option::is_some);
+    let under_way = app.strip.along == Along::Granules && app.strip.left > 0;
     if under_way {
         app.strip.cancel.cancel();
         // Asked for once more, it begins anew.
         app.strip.text.clear();
+        app.strip.left = 0;
         app.strip.along = Along::Dimension(0);
         app.say("the granules are summed up no further");
     }

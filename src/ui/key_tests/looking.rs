@@ -229,6 +229,7 @@ fn the_strip_lies_along_dimensions_and_then_along_granules() {
     };
     // 30 black bodies from 250 to 279 K in both; the third is no granule.
     assert_eq!(sums(&trial), [Some(265.0), Some(265.0), None]);
+    assert_eq!(trial.app.strip.left(), 0, "the torn file is not waited for");
     let screen = trial.screen(120, 40);
     assert!(screen.contains("Strip bt(900) along granules"), "{screen}");
     trial.types(":layer bt(900) - 100").keys("Enter");

@@ -54,7 +54,7 @@ fn with_view<R>(app: &App, use_view: impl FnOnce(&StripView<'_>) -> R) -> R {
         groups: &series.groups,
         cursor: series.cursor,
         words: &words,
-        empty: "",
+        empty: series.empty(),
         focused,
     })
 }
@@ -74,6 +74,8 @@ struct Series {
     /// The group under the cursor by its name, and why it has no values.
     name: String,
     why: String,
+    /// Granules are still to be summed up.
+    is_summing: bool,
 }
 
 impl Series {
@@ -84,7 +86,7 @@ impl Series {
         let cursor = footprints.position(bench.cursor).get(dimension).copied();
         let name = cursor.map_or_else(String::new, |number| format!("{along} {number}"));
         let groups = gathered(&bench.layer.values, footprints.lengths(), dimension);
-        Series { along, groups, cursor, name, why: "no values".to_owned() }
+        Series { along, groups, cursor, name, why: "no values".to_owned(), is_summing: false }
     }
 
     /// The layer in the granules of the Tray.
@@ -100,7 +102,20 @@ impl Series {
         };
         let entry = cursor.and_then(|entry| app.tray.entry(entry));
         let name = entry.map(|entry| entry.name.clone()).unwrap_or_default();
-        Series { along: "granules".to_owned(), groups, cursor, name, why }
+        Series {
+            along: "granules".to_owned(),
+            groups,
+            cursor,
+            name,
+            why,
+            is_summing: app.strip.left() > 0,
+        }
+    }
+
+    /// What is said while there is nothing to show, if that will change.
+    fn empty(&self) -> &'static str {
+        let nothing = self.groups.iter().all(Option::is_none);
+        if nothing && self.is_summing { "summing up the granules…" } else { "" }
     }
 
     /// `line 12: median 287.43 K, mean 286.91 K`
