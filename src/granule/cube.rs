@@ -5,14 +5,14 @@ use std::ops::{Deref, Range};
 use std::sync::OnceLock;
 use std::sync::atomic::{AtomicBool, AtomicU64, AtomicUsize, Ordering};
 
-use super::band::{Band, Quantity};
+use super::band::Band;
+use super::conversion::Conversion;
 use super::decoder::Decoder;
 use super::footprints::FootprintGrid;
 use super::memory_plan::MemoryPlan;
 use super::problem::Problem;
-use crate::netcdf_files::{Samples, with_values};
+use crate::netcdf_files::Samples;
 use crate::spectral::Hamming3;
-use crate::units::TemperatureUnit;
 
 /// Whether values have been read yet.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -42,13 +42,10 @@ pub struct Cube {
 #[derive(Debug)]
 struct BandCube {
     name: String,
-    channels: usize,
     rows: usize,
     rows_per_slab: usize,
     value_size: usize,
-    decoder: Decoder,
-    scale: Scale,
-    apodise: Option<Hamming3>,
+    conversion: Conversion,
     slabs: Vec<OnceLock<Samples>>,
     /// Slabs whose values have been looked through.
     looked_through: Vec<AtomicBool>,
@@ -64,31 +61,6 @@ pub(super) struct BandStorage {
     pub apodise: Option<Hamming3>,
 }
 
-/// From the file's unit to the working unit.
-#[derive(Debug)]
-enum Scale {
-    /// Radiance: a factor for each channel.
-    Factors(Vec<f64>),
-    /// Brightness temperature.
-    Temperature(TemperatureUnit),
-}
-
-impl Scale {
-    #[inline]
-    fn apply(&self, channel: usize, value: f64) -> f64 {
-        match self {
-            Self::Factors(factors) => value * factors[channel],
-            Self::Temperature(unit) => above_zero(unit.to_kelvin(value)),
-        }
-    }
-}
-
-/// There is no temperature of zero kelvin or less; such a value is missing.
-#[inline]
-fn above_zero(kelvin: f64) -> f64 {
-    if kelvin > 0.0 { kelvin } else { f64::NAN }
-}
-
 impl Cube {
     /// An empty cube for the given bands, each with its decoder and the rows that its slabs hold.
     pub(super) fn new(
@@ -100,18 +72,10 @@ impl Cube {
         let rows = footprints.lengths().first().copied().unwrap_or(0);
         let band_cube = |(band, storage): (&Band, BandStorage)| BandCube {
             name: band.name.clone(),
-            channels: band.channels(),
             rows,
             rows_per_slab: storage.rows_per_slab,
             value_size: storage.value_size,
-            decoder: storage.decoder,
-            apodise: storage.apodise,
-            scale: match &band.quantity {
-                Quantity::Radiance(unit) => Scale::Factors(
-                    band.axis.wavenumbers().iter().map(|&nu| unit.factor_at(nu)).collect(),
-                ),
-                Quantity::BrightnessTemperature(unit) => Scale::Temperature(*unit),
-            },
+            conversion: Conversion::new(band, storage.decoder, storage.apodise),
             slabs: (0..rows.div_ceil(storage.rows_per_slab)).map(|_| OnceLock::new()).collect(),
             looked_through: (0..rows.div_ceil(storage.rows_per_slab))
                 .map(|_| AtomicBool::new(false))
@@ -190,7 +154,7 @@ impl Cube {
 
     fn bytes_over(&self, band: usize, footprints: usize) -> u64 {
         let band = &self.bands[band];
-        footprints.saturating_mul(band.channels).saturating_mul(band.value_size) as u64
+        footprints.saturating_mul(band.conversion.channels()).saturating_mul(band.value_size) as u64
     }
 
     /// The values of a slab, if they are here.
@@ -226,7 +190,7 @@ impl Cube {
     pub(super) fn look_through(&self, band: usize, slab: usize, samples: &Samples) {
         let band = &self.bands[band];
         if !band.looked_through[slab].swap(true, Ordering::Relaxed) {
-            let undeclared = band.decoder.undeclared_fills(samples);
+            let undeclared = band.conversion.undeclared_fills(samples);
             band.undeclared_fills.fetch_add(undeclared, Ordering::Relaxed);
         }
     }
@@ -242,7 +206,7 @@ impl Cube {
             }
             None => {
                 out.clear();
-                out.resize(self.bands[band].channels, f64::NAN);
+                out.resize(self.bands[band].conversion.channels(), f64::NAN);
                 Presence::NotYet
             }
         }
@@ -258,9 +222,9 @@ impl Cube {
         out: &mut Vec<f64>,
     ) {
         let first = self.footprints_of(band, slab).start;
-        let band = &self.bands[band];
+        let conversion = &self.bands[band].conversion;
         out.clear();
-        band.decode_spectrum(samples, (footprint - first) * band.channels, out);
+        conversion.decode_spectrum(samples, (footprint - first) * conversion.channels(), out);
     }
 
     /// One channel's values over all footprints, into `out` (of [`Self::footprints`] values):
@@ -303,7 +267,8 @@ impl Cube {
             match find(slab)? {
                 Some(samples) => {
                     let first = part.start - held.start;
-                    self.bands[band].decode_channels(&samples, first, channels, place, length, out);
+                    let conversion = &self.bands[band].conversion;
+                    conversion.decode_channels(&samples, first, channels, place, length, out);
                 }
                 None => {
                     out.chunks_mut(length).for_each(|out| out[place.clone()].fill(f64::NAN));
@@ -317,13 +282,13 @@ impl Cube {
 
     /// The running mean that a band's values are apodised by, where that was asked for.
     pub(super) fn apodised_by(&self, band: usize) -> Option<&Hamming3> {
-        self.bands[band].apodise.as_ref()
+        self.bands[band].conversion.apodise()
     }
 
     /// Decodes values that were read past the cube: one footprint's channels.
     pub(super) fn decode_spectrum(&self, band: usize, samples: &Samples) -> Vec<f64> {
         let mut out = Vec::new();
-        self.bands[band].decode_spectrum(samples, 0, &mut out);
+        self.bands[band].conversion.decode_spectrum(samples, 0, &mut out);
         out
     }
 
@@ -342,71 +307,5 @@ impl Cube {
             })
         });
         notes.collect()
-    }
-}
-
-/// Spectra that are gone through together where channels are taken out of them: values of so many
-/// footprints fill a line of the processor's cache.
-const SIDE_BY_SIDE: usize = 8;
-
-impl BandCube {
-    /// A channel's value out of one footprint's stored values.
-    #[inline]
-    fn value(&self, channel: usize, stored: impl Fn(usize) -> f64) -> f64 {
-        let plain = |channel| self.scale.apply(channel, self.decoder.decode(stored(channel)));
-        match &self.apodise {
-            Some(mean) => mean.at(channel, plain),
-            None => plain(channel),
-        }
-    }
-
-    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
-    fn decode_spectrum(&self, samples: &Samples, begin: usize, out: &mut Vec<f64>) {
-        out.reserve(self.channels);
-        with_values!(
-            samples,
-            values => {
-                let spectrum = &values[begin..begin + self.channels];
-                let stored = |channel: usize| spectrum[channel] as f64;
-                out.extend((0..self.channels).map(|channel| self.value(channel, stored)));
-            },
-            _strings => out.resize(self.channels, f64::NAN)
-        );
-    }
-
-    /// Some channels from the slab's footprint `first` on, into the `place` of each channel's
-    /// `length` values.
-    #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
-    fn decode_channels(
-        &self,
-        samples: &Samples,
-        first: usize,
-        channels: &[usize],
-        place: Range<usize>,
-        length: usize,
-        out: &mut [f64],
-    ) {
-        with_values!(
-            samples,
-            values => {
-                let spectra = &values[first * self.channels..];
-                for start in (0..place.len()).step_by(SIDE_BY_SIDE) {
-                    let some = start..(start + SIDE_BY_SIDE).min(place.len());
-                    for (row, &channel) in channels.iter().enumerate() {
-                        let begin = row * length + place.start;
-                        let out = &mut out[begin + some.start..begin + some.end];
-                        for (out, at) in out.iter_mut().zip(some.clone()) {
-                            let spectrum = &spectra[at * self.channels..][..self.channels];
-                            *out = self.value(channel, |channel| spectrum[channel] as f64);
-                        }
-                    }
-                }
-            },
-            _strings => {
-                for row in 0..channels.len() {
-                    out[row * length..][place.clone()].fill(f64::NAN);
-                }
-            }
-        );
     }
 }

@@ -13,6 +13,7 @@ mod band;
 mod channel_quality;
 mod channels;
 mod choose_bands;
+mod conversion;
 mod cube;
 mod decoder;
 mod error;
