@@ -25,6 +25,12 @@ pub fn check_names(
     }
     for (span, key, expression) in expressions(plain) {
         known_words(notebook, &span, &key, expression, by_name);
+        if expression.asks_tests() {
+            let text = clean_text(expression.text());
+            let what = "doubt, probability, flag and margin are known only after the tests: a rulebook \
+                        that asks for them leads back to itself";
+            notebook.note(&span, &key, format!("{what}\n    {text}"));
+        }
     }
     circles(notebook, by_name, plain);
     families(notebook, plain);

@@ -36,6 +36,8 @@ mod combine_tests;
 #[cfg(test)]
 mod rulebook_tests;
 #[cfg(test)]
+mod surroundings_tests;
+#[cfg(test)]
 mod worked_tests;
 
 pub use builtin::{BUILTIN_TEXT, builtin};
