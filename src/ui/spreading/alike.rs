@@ -12,6 +12,7 @@ use crate::ui::jobs::Job;
 use crate::ui::keys::Action;
 use crate::ui::looking::no_granule;
 use crate::ui::panes::Pane;
+use crate::ui::panes::field::Placement;
 
 /// Asks how far every spectrum is from the one under the cursor.
 pub fn ask(app: &mut App, measure: Measure) -> Vec<Job> {
@@ -45,9 +46,10 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
     bench.spread.against = None;
     bench.spread.above = false;
     bench.spread.grown = true;
-    let cut = proposed_threshold(&alike.values);
+    let cut = first_cut(&alike, &bench.placement);
     bench.spread.alike = Some(alike);
     bench.spread.source = Source::Alike;
+    bench.spread.x = cut;
     let range = bench.spread_range(&bench.spread_values());
     let Some((cut, range)) = cut.zip(range) else {
         app.say("all spectra are alike");
@@ -59,6 +61,23 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
         "like this one: Left and Right say how alike, {growing} grown or everywhere, {leave} leaves it"
     ));
     Vec::new()
+}
+
+/// How alike at first: twice as far as the one's neighbours on the map usually are, but not beyond
+/// the valley between alike and other ones.
+fn first_cut(alike: &Alike, map: &Placement) -> Option<f64> {
+    let valley = proposed_threshold(&alike.values)?;
+    let (column, row) = map.place_of(alike.footprint)?;
+    let around = (row.saturating_sub(1)..=row + 1)
+        .flat_map(|y| (column.saturating_sub(1)..=column + 1).map(move |x| (x, y)));
+    let mut near: Vec<f64> = around
+        .filter_map(|(x, y)| map.footprint_at(x, y))
+        .filter(|one| *one != alike.footprint)
+        .filter_map(|one| alike.values.get(one).copied().filter(|value| value.is_finite()))
+        .collect();
+    near.sort_by(f64::total_cmp);
+    let usual = near.get(near.len() / 2).map_or(valley, |median| 2.0 * median);
+    Some(usual.min(valley))
 }
 
 /// Those that hang together with the one, or all alike ones anywhere.

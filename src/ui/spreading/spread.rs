@@ -3,7 +3,7 @@
 use std::borrow::Cow;
 
 use crate::review::Measure;
-use crate::screening::{Screened, Sense, Threshold, Way, usual_range};
+use crate::screening::{Screened, Sense, Threshold, Way, proposed_threshold, usual_range};
 use crate::ui::bench::Bench;
 
 /// Whose values the Spread shows.
@@ -122,7 +122,12 @@ impl Bench {
 
     /// From where to where the values go, and the threshold too.
     pub fn spread_range(&self, values: &[f64]) -> Option<(f64, f64)> {
-        let (low, high) = usual_range(values)?;
+        let (low, mut high) = usual_range(values)?;
+        if self.spread_alike().is_some() {
+            // What is not alike at all is of no interest: finer steps are.
+            let far = proposed_threshold(values).unwrap_or(high);
+            high = high.min(far.max(2.0 * self.spread.x.unwrap_or(0.0)));
+        }
         match self.spread.x {
             Some(x) if x.is_finite() => Some((low.min(x), high.max(x))),
             _ => Some((low, high)),

@@ -3,6 +3,7 @@
 use crate::flags::{ReviewState, Scope};
 use crate::screening::{Tried, try_threshold};
 use crate::ui::bench::Bench;
+use crate::ui::widgets::short;
 
 /// The share of the range to both sides over which the steepness is taken.
 const REACH: f64 = 0.02;
@@ -35,7 +36,7 @@ impl Bench {
         kinds.iter().filter(|kind| kind.excludes).fold(0, |all, kind| all | kind.mask())
     }
 
-    /// `> 2.5: 120 of 1350, 4 without a value; decided 40: 12 hit, 2 missed, 1 false; 31 per K`
+    /// `> 2.5: 120 of 1350, 4 without a value; decided 40: 12 hit, 2 missed, 1 false; changes by 31 per K`
     pub fn tried_words(&self, values: &[f64], range: (f64, f64)) -> String {
         let missing = values.iter().filter(|value| value.is_nan()).count();
         let all = values.len();
@@ -57,6 +58,6 @@ impl Bench {
             );
         }
         let per = if self.spread_unit().is_empty() { "1" } else { self.spread_unit() };
-        words + &format!("; {:.0} per {per}", tried.steepness)
+        words + &format!("; changes by {} per {per}", short(tried.steepness))
     }
 }

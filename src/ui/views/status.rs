@@ -76,7 +76,20 @@ fn filling(bench: &Bench) -> Option<(String, Tone)> {
 /// Keys worth knowing at this moment: (key, what it does).
 pub fn hints(app: &App) -> Vec<(String, &'static str)> {
     let selecting = app.bench().is_some_and(|bench| bench.selecting.is_on());
-    let actions: &[(Action, &'static str)] = if selecting {
+    let trying = app.focus() == Pane::Spread
+        && app.bench().is_some_and(|bench| bench.selecting.kept().is_none());
+    let actions: &[(Action, &'static str)] = if trying {
+        &[
+            (Action::Left, "and Right: threshold"),
+            (Action::Valley, "valley"),
+            (Action::TurnSide, "side"),
+            (Action::NextTest, "test"),
+            (Action::Adopt, "adopt"),
+            (Action::Box, "brush"),
+            (Action::Flag, "flag"),
+            (Action::Cancel, "let go"),
+        ]
+    } else if selecting {
         &[
             (Action::Accept, "accept"),
             (Action::Overrule, "overrule"),

@@ -55,8 +55,8 @@ fn style_of(kind: Kind, theme: &Theme) -> Style {
     }
 }
 
-/// A column of cells from below. Each cell takes the kind that fills most of it; the topmost is as
-/// full as the count is, and no count above nought vanishes.
+/// A column of cells from below, as high as the square root of its count is, so that few are seen
+/// beside many. Each cell takes the kind that lies in its middle; no count above nought vanishes.
 fn draw_column(
     column: &Column,
     x: u16,
@@ -66,13 +66,14 @@ fn draw_column(
     buffer: &mut Buffer,
 ) {
     let all: usize = column.counts.iter().sum();
-    let eighths = (all * usize::from(bars.height) * 8).div_ceil(most.max(1));
+    let share = (all as f64 / most.max(1) as f64).sqrt();
+    let eighths = (share * f64::from(bars.height) * 8.0).ceil() as usize;
     for row in 0..bars.height {
         let filled = eighths.saturating_sub(usize::from(row) * 8).min(8);
         if filled == 0 {
             return;
         }
-        let middle = (usize::from(row) * 8 + filled / 2) * most / (usize::from(bars.height) * 8);
+        let middle = (usize::from(row) * 8 + filled / 2) * all / eighths;
         let kind = kind_at(column, middle);
         let sign = match KINDS.iter().find(|(known, _)| *known == kind) {
             Some((_, letter)) if theme.ascii => *letter,
@@ -154,7 +155,7 @@ fn draw_numbers(heaps: &Heaps<'_>, most: usize, line: Rect, theme: &Theme, buffe
     let unit = if heaps.unit.is_empty() { String::new() } else { format!(" {}", heaps.unit) };
     let right = format!("{}{unit}", short(heaps.range.1));
     put_right(line, &right, plain, theme.ascii, buffer);
-    let words = format!("tallest {most}");
+    let words = format!("tallest {most}, square root");
     let room = line.width.saturating_sub((left.len() + right.len() + 4) as u16);
     if usize::from(room) >= words.len() {
         let middle = line.x + (line.width - words.len() as u16) / 2;
