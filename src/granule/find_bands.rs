@@ -4,6 +4,7 @@ use super::band::Quantity;
 use super::layout_file::{BandEntry, LayoutFile};
 use super::named_variable::named_variable;
 use super::problem::Problem;
+use super::said_axis;
 use super::spectral_axis::{self, AxisCandidate, PossibleAxes};
 use crate::netcdf_files::{FileIndex, Variable};
 use crate::units::{RadianceUnit, SpectralDensity, TemperatureUnit};
@@ -126,7 +127,7 @@ fn said_candidate(
     if !variable.kind.is_number() || variable.dimensions.len() < 2 {
         return Err("no numbers over two or more dimensions".into());
     }
-    let axes = match spectral_axis::said(index, variable, entry)? {
+    let axes = match said_axis::said(index, variable, entry)? {
         Some(axis) => vec![axis],
         None => spectral_axis::candidates(index, &PossibleAxes::of(index), variable),
     };

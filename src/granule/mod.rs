@@ -40,6 +40,7 @@ mod opening;
 mod passing;
 mod problem;
 mod reading;
+mod said_axis;
 mod side_by_side;
 mod slabs;
 mod spectral_axis;
