@@ -3,14 +3,13 @@
 use std::path::Path;
 
 use radsieve::granule::Opening;
-use radsieve::layers::{Expression, evaluate};
 use radsieve::review::Review;
-use radsieve::screening::{Evidence, Rulebook};
+use radsieve::screening::{Rulebook, Screened};
 use radsieve::system::Cancel;
 
 /// Defects that leave much of a spectrum without a value or a signal: dead detector, lost scan line,
-/// lost band. Single missing stretches, spikes, striping and repeated lines are not looked for yet.
-const LOST: i32 = 1 | 1 << 3 | 1 << 5;
+/// lost band. They make a spectrum bad; what is wrong with single channels does not.
+pub const LOST: i32 = 1 | 1 << 3 | 1 << 5;
 
 /// A granule that was screened.
 pub struct Granule {
@@ -24,8 +23,26 @@ pub struct Granule {
 pub struct Case {
     /// What is true.
     pub truth: Truth,
-    /// What the tests say.
-    pub evidence: Evidence,
+    /// Its surface in the rulebook's words.
+    pub surface: String,
+    /// Whether anything can be said.
+    pub assessed: bool,
+    /// What is concluded about each flag, in the order of the rulebook.
+    pub flags: Vec<Found>,
+    /// Margin of each test, in the order of the rulebook; not a number where it does not speak.
+    pub margins: Vec<f64>,
+}
+
+/// What is concluded about a flag.
+pub struct Found {
+    /// The flag.
+    pub flag: String,
+    /// Whether the tests set it.
+    pub set: bool,
+    /// Probability that it holds; `None` where no test speaks.
+    pub probability: Option<f64>,
+    /// What each family says, 0 where it is silent; empty unless asked for.
+    pub voices: Vec<(String, f64)>,
 }
 
 /// What is true about a footprint.
@@ -35,75 +52,154 @@ pub struct Truth {
     pub effective: f64,
     /// Pressure at the top of the highest cloud, hPa; 1100 without cloud.
     pub top: f64,
-    /// Optical depth of dust at 961 cm-1.
-    pub dust: f64,
+    /// Optical depth of dust at 961 or of ash at 909 cm-1, whichever is larger.
+    pub particles: f64,
+    /// Sulphur dioxide, Dobson units.
+    pub so2: f64,
+    /// Share of land.
+    pub land: f64,
+    /// Surface temperature, K: what freezes is no open sea.
+    pub surface_temperature: f64,
     /// Whether no cloud is in the footprint nor beside it.
     pub far_from_cloud: bool,
     /// Defect bits.
     pub defects: i32,
 }
 
+/// Sea water freezes at -1.8 degrees Celsius.
+const FREEZING: f64 = 271.35;
+
 impl Granule {
-    /// Reads and screens a synthetic granule.
+    /// Reads and screens a synthetic granule; `voices` keeps what each family says.
     pub fn screened(
         opening: &Opening,
         file: &Path,
         rulebook: &Rulebook,
+        voices: bool,
     ) -> Result<Granule, Box<dyn std::error::Error>> {
         let review = Review::open(opening, file)?;
         let screened = review.screen(rulebook, &Cancel::new())?;
-        let column = |text: &str| -> Result<Vec<f64>, Box<dyn std::error::Error>> {
-            Ok(evaluate(&Expression::parse(text)?, &review.names())?.values)
-        };
-        let amount = column("var(\"truth/cloud_amount\")")?;
-        let depth = column("var(\"truth/cloud_optical_depth\")")?;
-        let top = column("var(\"truth/cloud_top_pressure\")")?;
-        let dust = column("var(\"truth/dust_optical_depth\")")?;
-        let beside = column("max3(var(\"truth/cloud_amount\"))")?;
-        let defects = column("var(\"truth/defects\")")?;
-        let case = |at: usize| {
-            let truth = Truth {
-                effective: amount[at] * (1.0 - (-depth[at] / amount[at].max(1e-3)).exp()),
-                top: if top[at].is_nan() { 1100.0 } else { top[at] },
-                dust: dust[at],
-                far_from_cloud: beside[at] < 0.005,
-                defects: defects[at] as i32,
-            };
-            Some(Case { truth, evidence: screened.evidence(at)? })
-        };
-        let cases = (0..screened.footprints()).filter_map(case).collect();
+        let truths = truths(&review, screened.footprints())?;
+        let cases = truths.into_iter().enumerate();
+        let cases = cases.map(|(at, truth)| Case::of(&screened, at, truth, voices)).collect();
         Ok(Granule { name: review.granule().name(), cases })
     }
+}
+
+fn truths(review: &Review, footprints: usize) -> Result<Vec<Truth>, String> {
+    let column = |text: &str| Ok::<_, String>(review.layer(text, &Cancel::new())?.values);
+    // Only scenes with a plume say how much there is.
+    let plume = |name: &str| {
+        column(&format!("var(\"truth/{name}\")")).unwrap_or_else(|_| vec![0.0; footprints])
+    };
+    let amount = column("var(\"truth/cloud_amount\")")?;
+    let depth = column("var(\"truth/cloud_optical_depth\")")?;
+    let top = column("var(\"truth/cloud_top_pressure\")")?;
+    let dust = column("var(\"truth/dust_optical_depth\")")?;
+    let beside = column("max3(var(\"truth/cloud_amount\"))")?;
+    let defects = column("var(\"truth/defects\")")?;
+    let warmth = column("var(\"truth/surface_temperature\")")?;
+    let (land, ash, so2) = (column("land")?, plume("ash_optical_depth"), plume("so2_column"));
+    let truth = |at: usize| Truth {
+        effective: amount[at] * (1.0 - (-depth[at] / amount[at].max(1e-3)).exp()),
+        top: if top[at].is_nan() { 1100.0 } else { top[at] },
+        particles: dust[at].max(ash[at]),
+        so2: so2[at],
+        land: land[at],
+        surface_temperature: warmth[at],
+        far_from_cloud: beside[at] < 0.005,
+        defects: defects[at] as i32,
+    };
+    Ok((0..footprints).map(truth).collect())
 }
 
 impl Truth {
     /// Whether a flag should be set; `None` where it is a matter of taste.
     pub fn deserves(&self, flag: &str) -> Option<bool> {
         let (effective, low) = (self.effective, self.top > 500.0);
-        let sound = self.defects == 0;
+        let clear = effective < 0.02;
         match flag {
             "bad_spectrum" if self.defects & LOST != 0 => Some(true),
-            "bad_spectrum" => sound.then_some(false),
-            _ if !sound => None,
+            "bad_spectrum" => self.is_sound().then_some(false),
+            _ if !self.is_sound() => None,
             "cloudy" if effective > 0.5 || (low && effective > 0.15) => Some(true),
-            "cloudy" => (effective < 0.02).then_some(false),
+            "cloudy" => clear.then_some(false),
             "thin_cloud" if !low && (0.05..=0.6).contains(&effective) => Some(true),
-            "thin_cloud" => (effective < 0.02 || low).then_some(false),
-            "dust_or_ash" if self.dust >= 0.2 && effective < 0.1 => Some(true),
-            "dust_or_ash" => (self.dust < 0.02).then_some(false),
-            _ => Some(false),
+            "thin_cloud" => (clear || low).then_some(false),
+            "dust_or_ash" if self.particles >= 0.2 && effective < 0.1 => Some(true),
+            "dust_or_ash" => (self.particles < 0.02).then_some(false),
+            "so2" if self.so2 >= 20.0 && effective < 0.1 => Some(true),
+            "so2" => (self.so2 < 1.0).then_some(false),
+            _ => None,
         }
+    }
+
+    /// Whether nothing is wrong with the spectrum.
+    pub fn is_sound(&self) -> bool {
+        self.defects == 0
+    }
+
+    /// Sound, nothing in the air, no cloud beside it.
+    pub fn is_clear(&self) -> bool {
+        self.is_sound() && self.far_from_cloud && self.particles < 0.02 && self.so2 < 1.0
+    }
+
+    /// Open sea.
+    pub fn is_sea(&self) -> bool {
+        self.land < 0.01 && self.surface_temperature > FREEZING
+    }
+
+    /// Cloud that matters: effective amount above 0.3, top above 2 km, which is near 800 hPa.
+    pub fn is_cloud_aloft(&self) -> bool {
+        self.is_sound() && self.effective > 0.3 && self.top < 800.0
     }
 }
 
 impl Case {
+    fn of(screened: &Screened, at: usize, truth: Truth, voices: bool) -> Case {
+        let surface =
+            screened.surfaces[at].map(|surface| &screened.rulebook.surfaces[surface].name);
+        let evidence = if voices { screened.evidence(at) } else { None };
+        let voices_of = |flag: &str| {
+            let flags = evidence.iter().flat_map(|evidence| &evidence.flags);
+            let families = flags.filter(|one| one.flag == flag).flat_map(|one| &one.families);
+            families.map(|one| (one.family.clone(), one.log_odds.unwrap_or(0.0))).collect()
+        };
+        let found = screened.flags.iter().map(|result| {
+            let probability = result.conclusions[at].probability;
+            Found {
+                flag: result.flag.clone(),
+                set: result.is_set(at),
+                probability: (!probability.is_nan()).then_some(probability),
+                voices: voices_of(&result.flag),
+            }
+        });
+        Case {
+            truth,
+            surface: surface.cloned().unwrap_or_default(),
+            assessed: screened.assessed[at],
+            flags: found.collect(),
+            margins: screened.tests.iter().map(|test| test.margins[at]).collect(),
+        }
+    }
+
+    /// What is concluded about a flag.
+    pub fn found(&self, flag: &str) -> Option<&Found> {
+        self.flags.iter().find(|one| one.flag == flag)
+    }
+
     /// Whether the tests set a flag.
     pub fn is_set(&self, flag: &str) -> bool {
-        self.evidence.flags.iter().any(|one| one.flag == flag && one.set)
+        self.found(flag).is_some_and(|one| one.set)
     }
 
     /// Whether the tests see cloud of any kind.
     pub fn is_cloud(&self) -> bool {
         self.is_set("cloudy") || self.is_set("thin_cloud")
+    }
+
+    /// Whether the tests see anything in the air.
+    pub fn is_alarm(&self) -> bool {
+        self.is_cloud() || self.is_set("dust_or_ash") || self.is_set("so2")
     }
 }

@@ -6,10 +6,13 @@ use radsieve::screening::Rulebook;
 
 use crate::cases::Granule;
 
-/// Pulls weights towards 1 and starting points towards 0, so that scenes that are told apart
-/// without a slip do not drive them to infinity.
-const PULL: f64 = 0.02;
-const STEPS: usize = 1500;
+/// Pulls weights towards 1 and starting points towards 0 as so many footprints would, so that scenes that
+/// are told apart without a slip do not drive them to infinity.
+const PULL: f64 = 20.0;
+const SWEEPS: usize = 60;
+/// A family that is asked has a say, and none decides alone.
+const LEAST: f64 = 0.1;
+const MOST: f64 = 2.0;
 /// Fewer cases of either kind calibrate nothing.
 const FEWEST: usize = 60;
 
@@ -46,41 +49,43 @@ fn rows(surface: &str, flag: &str, granules: &[Granule]) -> (Vec<String>, Vec<Ro
     let (mut families, mut rows) = (Vec::new(), Vec::new());
     for case in granules.iter().flat_map(|granule| &granule.cases) {
         let Some(truth) = case.truth.deserves(flag) else { continue };
-        let found = case.evidence.flags.iter().find(|one| one.flag == flag);
-        let Some(found) = found.filter(|_| case.evidence.surface.as_deref() == Some(surface))
-        else {
-            continue;
-        };
+        let Some(found) = case.found(flag).filter(|_| case.surface == surface) else { continue };
         if found.probability.is_some() {
-            families = found.families.iter().map(|one| one.family.clone()).collect();
-            let voices = found.families.iter().map(|one| one.log_odds.unwrap_or(0.0));
-            rows.push((voices.collect(), truth));
+            families = found.voices.iter().map(|one| one.0.clone()).collect();
+            rows.push((found.voices.iter().map(|one| one.1).collect(), truth));
         }
     }
     (families, rows)
 }
 
-/// Starting point, then weights. Both kinds of footprint count alike, however many there are.
+/// Starting point, then weights. Each footprint counts once: probabilities are those of the set that is
+/// fitted to, in which cloud is about as frequent as clear sky.
+///
+/// One number after the other is moved to its best value by Newton's step, until nothing moves.
 fn fit(rows: &[Row], families: usize) -> Vec<f64> {
-    let set = rows.iter().filter(|row| row.1).count() as f64;
-    let unset = rows.len() as f64 - set;
     let mut found = vec![0.0; families + 1];
     found[1..].fill(0.5);
-    for step in 0..STEPS {
-        let rate = 0.15 / (1.0 + step as f64 / 300.0);
-        let mut slope = vec![0.0; families + 1];
-        for (voices, truth) in rows {
-            let sum: f64 =
-                voices.iter().zip(&found[1..]).map(|(voice, weight)| voice * weight).sum();
-            let probability = 1.0 / (1.0 + (-found[0] - sum).exp());
-            let share = 0.5 / if *truth { set } else { unset };
-            let miss = share * (probability - f64::from(u8::from(*truth)));
-            slope[0] += miss;
-            slope[1..].iter_mut().zip(voices).for_each(|(slope, voice)| *slope += miss * voice);
-        }
-        found[0] -= rate * (slope[0] + PULL * 0.1 * found[0]);
-        for (weight, slope) in found[1..].iter_mut().zip(&slope[1..]) {
-            *weight = (*weight - rate * (slope + PULL * (*weight - 1.0) * 0.2)).clamp(0.05, 2.0);
+    let mut sums: Vec<f64> =
+        rows.iter().map(|(voices, _)| 0.5 * voices.iter().sum::<f64>()).collect();
+    for _ in 0..SWEEPS {
+        for place in 0..found.len() {
+            let lever = |voices: &[f64]| if place == 0 { 1.0 } else { voices[place - 1] };
+            let (home, pull) = if place == 0 { (0.0, PULL * 0.1) } else { (1.0, PULL) };
+            let (mut slope, mut bend) = (pull * (found[place] - home), pull);
+            for ((voices, truth), sum) in rows.iter().zip(&sums) {
+                let probability = 1.0 / (1.0 + (-sum).exp());
+                let lever = lever(voices);
+                slope += (probability - f64::from(u8::from(*truth))) * lever;
+                bend += probability * (1.0 - probability) * lever * lever;
+            }
+            let step = (-slope / bend).clamp(-0.5, 0.5);
+            let new =
+                if place == 0 { found[0] + step } else { (found[place] + step).clamp(LEAST, MOST) };
+            let moved = new - found[place];
+            found[place] = new;
+            for ((voices, _), sum) in rows.iter().zip(&mut sums) {
+                *sum += moved * lever(voices);
+            }
         }
     }
     found

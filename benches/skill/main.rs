@@ -1,50 +1,88 @@
 //! How well the built-in rulebook does on synthetic granules, against their truth.
 //!
-//! `cargo bench --bench skill -- FILES…` prints the tables of `docs/skill.md` for granules that
-//! `radsieve synth` made; without files it takes the sample granules. `--fit` prints starting points
-//! and weights fitted to them in place of the tables: fit on some granules, measure on others.
-//! Synthetic skill is not real skill.
+//! `cargo bench --bench skill` makes perturbed granules and prints the tables of `docs/skill.md`;
+//! `-- --fit` makes others and prints starting points and weights fitted to them. `--keep DIR` keeps
+//! the granules and takes those that are there, `--rules FILE` takes another rulebook, and files in
+//! place of a set may be named. Synthetic skill is not real skill.
 #![allow(clippy::print_stdout)]
 
 mod cases;
 mod fit;
+mod limits;
+mod sets;
 mod tables;
 
 use std::path::{Path, PathBuf};
 
 use radsieve::granule::Opening;
 use radsieve::netcdf_files::ReaderProgram;
-use radsieve::screening::builtin;
+use radsieve::screening::{Rulebook, builtin};
 
 use cases::Granule;
 
-fn main() -> Result<(), Box<dyn std::error::Error>> {
-    let arguments: Vec<String> = std::env::args().skip(1).collect();
-    let fitting = arguments.iter().any(|argument| argument == "--fit");
-    let mut files: Vec<PathBuf> =
-        arguments.iter().filter(|argument| !argument.starts_with("--")).map(Into::into).collect();
-    if files.is_empty() {
-        files = samples()?;
+type Mishap = Box<dyn std::error::Error>;
+
+/// What was asked for.
+#[derive(Default)]
+struct Wish {
+    fit: bool,
+    keep: Option<PathBuf>,
+    rules: Option<PathBuf>,
+    files: Vec<PathBuf>,
+}
+
+fn wish() -> Result<Wish, Mishap> {
+    let mut wish = Wish::default();
+    let mut arguments = std::env::args().skip(1);
+    while let Some(argument) = arguments.next() {
+        let mut value = || arguments.next().ok_or(format!("{argument} wants a value"));
+        match argument.as_str() {
+            "--fit" => wish.fit = true,
+            "--keep" => wish.keep = Some(value()?.into()),
+            "--rules" => wish.rules = Some(value()?.into()),
+            // What cargo itself hands over.
+            "--bench" => {}
+            file => wish.files.push(file.into()),
+        }
     }
-    let opening = Opening::new(ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve")));
-    let rulebook = builtin()?;
-    let mut granules = Vec::new();
-    for file in &files {
-        granules.push(Granule::screened(&opening, file, &rulebook)?);
-    }
-    if fitting {
-        print!("{}", fit::weights(&rulebook, &granules));
-    } else {
-        print!("{}", tables::all(&rulebook, &granules));
+    Ok(wish)
+}
+
+fn main() -> Result<(), Mishap> {
+    let wish = wish()?;
+    let rulebook = match &wish.rules {
+        None => builtin()?,
+        Some(path) => {
+            Rulebook::parse(&std::fs::read_to_string(path)?, &path.display().to_string())?
+        }
+    };
+    let granules = match wish.files.is_empty() {
+        true => of_set(&wish, &rulebook)?,
+        false => screened(&wish.files, &rulebook, wish.fit)?,
+    };
+    match wish.fit {
+        true => print!("{}", fit::weights(&rulebook, &granules)),
+        false => print!("{}", tables::all(&rulebook, &granules)),
     }
     Ok(())
 }
 
-fn samples() -> std::io::Result<Vec<PathBuf>> {
-    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("sample_granules");
-    let mut files: Vec<PathBuf> =
-        std::fs::read_dir(folder)?.filter_map(|entry| Some(entry.ok()?.path())).collect();
-    files.retain(|file| file.extension().is_some_and(|ending| ending == "nc"));
-    files.sort();
-    Ok(files)
+fn of_set(wish: &Wish, rulebook: &Rulebook) -> Result<Vec<Granule>, Mishap> {
+    let set = if wish.fit { sets::CALIBRATION } else { sets::SKILL };
+    let passing = tempfile::tempdir()?;
+    let folder: &Path = wish.keep.as_deref().unwrap_or(passing.path());
+    let mut granules = Vec::new();
+    for recipe in set.recipes() {
+        let file = sets::made(recipe, folder)?;
+        granules.extend(screened(&[file.clone()], rulebook, wish.fit)?);
+        if wish.keep.is_none() {
+            std::fs::remove_file(file)?;
+        }
+    }
+    Ok(granules)
+}
+
+fn screened(files: &[PathBuf], rulebook: &Rulebook, fit: bool) -> Result<Vec<Granule>, Mishap> {
+    let opening = Opening::new(ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve")));
+    files.iter().map(|file| Granule::screened(&opening, file, rulebook, fit)).collect()
 }

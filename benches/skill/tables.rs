@@ -5,97 +5,89 @@ use std::fmt::Write as _;
 use radsieve::screening::Rulebook;
 
 use crate::cases::{Case, Granule};
+use crate::limits::{ASKED, CLIMATES, MORE, Question, Share, of_scenes};
 
-const FLAGS: [&str; 4] = ["cloudy", "thin_cloud", "dust_or_ash", "bad_spectrum"];
+const FLAGS: [&str; 5] = ["cloudy", "thin_cloud", "dust_or_ash", "so2", "bad_spectrum"];
+const SCENES: [&str; 7] = [
+    "sea_of_lowen",
+    "gulf_of_tamber",
+    "strait_of_pell",
+    "hesk_isles",
+    "ketter_desert",
+    "norrik_plateau",
+    "iskel_sound",
+];
 
 /// All tables.
 pub fn all(rulebook: &Rulebook, granules: &[Granule]) -> String {
     let mut text = format!("Rulebook {} ({})\n", rulebook.name, rulebook.fingerprint);
-    text += &shares(granules);
+    text += &climates(granules);
+    text += &scenes(granules);
     text += &confusion(granules);
+    text += &single(rulebook, granules);
     text += &reliability(granules);
     text += &curve(granules);
     text
 }
 
-fn share<'c>(cases: impl Iterator<Item = &'c Case>, holds: impl Fn(&Case) -> bool) -> String {
-    let (mut all, mut held) = (0_usize, 0_usize);
-    for case in cases {
-        all += 1;
-        held += usize::from(holds(case));
-    }
-    match all {
-        0 => "-".to_owned(),
-        all => format!("{:.1} % of {all}", 100.0 * held as f64 / all as f64),
-    }
+fn head(first: &str, questions: &[&Question]) -> String {
+    let heads: Vec<&str> = questions.iter().map(|question| question.head).collect();
+    let rule = vec!["---"; heads.len() + 1].join(" | ");
+    format!("\n| {first} | {} |\n| {rule} |\n", heads.join(" | "))
 }
 
-/// What users ask first, granule by granule.
-fn shares(granules: &[Granule]) -> String {
-    let mut text = "\n| granule | cloud, effective amount above 0.3, top above 2 km: flagged | thin, 0.05 to \
-        0.3: flagged | low, above 0.3: flagged | clear sea, far from cloud: flagged | other clear ground, far from cloud: \
-        flagged | dust 0.5 or more: \
-        flagged | no dust: flagged | lost channels: flagged | sound: flagged bad | not assessed |\n\
-        | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- |\n"
-        .to_owned();
-    for granule in granules {
-        let of = |wanted: fn(&Case) -> bool| granule.cases.iter().filter(move |case| wanted(case));
-        let cells = [
-            // 2 km lies near 800 hPa.
-            share(
-                of(|c| sound(c) && c.truth.effective > 0.3 && c.truth.top < 800.0),
-                Case::is_cloud,
-            ),
-            share(
-                of(|c| sound(c) && c.truth.top < 500.0 && (0.05..0.3).contains(&c.truth.effective)),
-                Case::is_cloud,
-            ),
-            share(
-                of(|c| sound(c) && c.truth.effective > 0.3 && c.truth.top >= 800.0),
-                Case::is_cloud,
-            ),
-            share(of(|c| is_clear(c) && is_sea(c)), is_alarm),
-            share(of(|c| is_clear(c) && !is_sea(c)), is_alarm),
-            share(of(|c| sound(c) && c.truth.dust >= 0.5), |c| c.is_set("dust_or_ash")),
-            share(of(|c| sound(c) && c.truth.dust < 0.02), |c| c.is_set("dust_or_ash")),
-            share(of(|c| c.truth.deserves("bad_spectrum") == Some(true)), |c| {
-                c.is_set("bad_spectrum")
-            }),
-            share(of(sound), |c| c.is_set("bad_spectrum")),
-            share(of(|_| true), |c| !c.evidence.assessed),
-        ];
-        let _ = writeln!(text, "| {} | {} |", granule.name, cells.join(" | "));
+fn answers<'g>(
+    questions: &[&Question],
+    granules: impl Iterator<Item = &'g Granule> + Clone,
+) -> String {
+    let answers: Vec<String> =
+        questions.iter().map(|question| question.answer(granules.clone()).to_string()).collect();
+    answers.join(" | ")
+}
+
+/// What has a limit, climate by climate.
+fn climates(granules: &[Granule]) -> String {
+    let mut text = head("climate", &ASKED);
+    for (climate, scenes) in CLIMATES {
+        let granules: Vec<&Granule> = of_scenes(granules, scenes).collect();
+        let _ = writeln!(text, "| {climate} | {} |", answers(&ASKED, granules.into_iter()));
     }
     text
 }
 
-fn is_clear(case: &Case) -> bool {
-    sound(case) && case.truth.far_from_cloud && case.truth.dust < 0.02
+/// Everything, scene by scene and instrument by instrument.
+fn scenes(granules: &[Granule]) -> String {
+    let more: Vec<&Question> = MORE.iter().collect();
+    let mut text = String::new();
+    for questions in [&ASKED[..], &more] {
+        text += &head("scene", questions);
+        for scene in SCENES {
+            for (instrument, shape) in [("interferometer", "x9"), ("grating", "x30")] {
+                let scene_alone = [scene];
+                let granules = of_scenes(granules, &scene_alone);
+                let granules: Vec<&Granule> =
+                    granules.filter(|one| one.name.contains(shape)).collect();
+                if granules.is_empty() {
+                    continue;
+                }
+                let answers = answers(questions, granules.into_iter());
+                let _ = writeln!(text, "| {}, {instrument} | {answers} |", scene.replace('_', " "));
+            }
+        }
+    }
+    text
 }
 
-fn is_sea(case: &Case) -> bool {
-    case.evidence.surface.as_deref() == Some("sea")
-}
-
-fn is_alarm(case: &Case) -> bool {
-    case.is_cloud() || case.is_set("dust_or_ash")
-}
-
-fn sound(case: &Case) -> bool {
-    case.truth.defects == 0
-}
-
-/// Hits, misses, false alarms, rightly left alone, by flag and surface.
+/// Hits, misses, false alarms, rightly left alone, by scene and flag.
 fn confusion(granules: &[Granule]) -> String {
-    let mut text = "\n| flag | surface | hit | missed | false alarm | rightly not set |\n\
+    let mut text = "\n| scene | flag | hit | missed | false alarm | rightly not set |\n\
         | --- | --- | --- | --- | --- | --- |\n"
         .to_owned();
-    for flag in FLAGS {
-        for surface in ["sea", "land", "snow"] {
+    for scene in SCENES {
+        for flag in FLAGS {
             let mut counts = [0_usize; 4];
-            for case in granules.iter().flat_map(|granule| &granule.cases) {
-                let here = case.evidence.surface.as_deref() == Some(surface);
-                if let (true, Some(truth)) = (here, case.truth.deserves(flag)) {
+            for case in of_scenes(granules, &[scene]).flat_map(|granule| &granule.cases) {
+                if let Some(truth) = case.truth.deserves(flag) {
                     let place = match (truth, case.is_set(flag)) {
                         (true, true) => 0,
                         (true, false) => 1,
@@ -106,7 +98,34 @@ fn confusion(granules: &[Granule]) -> String {
                 }
             }
             let [hit, missed, alarm, right] = counts;
-            let _ = writeln!(text, "| {flag} | {surface} | {hit} | {missed} | {alarm} | {right} |");
+            if hit + missed + alarm > 0 {
+                let scene = scene.replace('_', " ");
+                let _ =
+                    writeln!(text, "| {scene} | {flag} | {hit} | {missed} | {alarm} | {right} |");
+            }
+        }
+    }
+    text
+}
+
+/// What each test says alone.
+fn single(rulebook: &Rulebook, granules: &[Granule]) -> String {
+    let mut text = "\n| test | speaks | speaks for: rightly | speaks for: wrongly |\n\
+        | --- | --- | --- | --- |\n"
+        .to_owned();
+    let cases = || granules.iter().flat_map(|granule| &granule.cases);
+    for (place, test) in rulebook.tests.iter().enumerate() {
+        let mut shares = [Share::default(); 2];
+        for case in cases().filter(|case| !case.margins[place].is_nan()) {
+            let Some(truth) = case.truth.deserves(&test.flag) else { continue };
+            let share = &mut shares[usize::from(!truth)];
+            share.all += 1;
+            share.held += usize::from(case.margins[place] > 0.0);
+        }
+        let all = shares[0].all + shares[1].all;
+        if all > 0 {
+            let [right, wrong] = shares;
+            let _ = writeln!(text, "| {} | {all} | {right} | {wrong} |", test.name);
         }
     }
     text
@@ -114,18 +133,19 @@ fn confusion(granules: &[Granule]) -> String {
 
 /// Cases with a truth and a probability.
 fn judged<'g>(granules: &'g [Granule], flag: &'g str) -> impl Iterator<Item = (f64, bool)> + 'g {
-    granules.iter().flat_map(|granule| &granule.cases).filter_map(move |case| {
-        let found = case.evidence.flags.iter().find(|one| one.flag == flag)?;
-        Some((found.probability?, case.truth.deserves(flag)?))
+    let cases = granules.iter().flat_map(|granule| &granule.cases);
+    cases.filter_map(move |case: &Case| {
+        Some((case.found(flag)?.probability?, case.truth.deserves(flag)?))
     })
 }
 
 /// How often a flag holds where the tests give it a probability.
 fn reliability(granules: &[Granule]) -> String {
     const EDGES: [f64; 8] = [0.0, 0.05, 0.2, 0.4, 0.6, 0.8, 0.95, 1.000_001];
-    let mut text = "\n| flag | probability given | mean given | true | footprints |\n\
-        | --- | --- | --- | --- | --- |\n"
-        .to_owned();
+    let mut text =
+        "\n| flag | probability given | mean given | true | footprints | true, as a bar |\n\
+        | --- | --- | --- | --- | --- | --- |\n"
+            .to_owned();
     for flag in FLAGS {
         for edges in EDGES.windows(2) {
             let inside: Vec<(f64, bool)> = judged(granules, flag)
@@ -138,10 +158,24 @@ fn reliability(granules: &[Granule]) -> String {
             let given = inside.iter().map(|(given, _)| given).sum::<f64>() / count;
             let held = inside.iter().filter(|(_, truth)| *truth).count() as f64 / count;
             let range = format!("{} to {:.2}", edges[0], edges[1]);
-            let _ = writeln!(text, "| {flag} | {range} | {given:.2} | {held:.2} | {count} |");
+            let bar = bar(given, held);
+            let _ =
+                writeln!(text, "| {flag} | {range} | {given:.2} | {held:.2} | {count} | `{bar}` |");
         }
     }
     text
+}
+
+/// 20 places: how often it held as `#`, where it should have been as `|`.
+fn bar(given: f64, held: f64) -> String {
+    let place = |share: f64| (share * 20.0).round() as usize;
+    (0..=20)
+        .map(|at| match at {
+            at if at == place(given) => '|',
+            at if at < place(held) => '#',
+            _ => '.',
+        })
+        .collect()
 }
 
 /// Hits against false alarms as the probability from which a flag is set varies.
