@@ -41,8 +41,8 @@ pub struct Found {
     pub set: bool,
     /// Probability that it holds; `None` where no test speaks.
     pub probability: Option<f64>,
-    /// What each family says, 0 where it is silent; empty unless asked for.
-    pub voices: Vec<(String, f64)>,
+    /// What each family says, if it speaks; empty unless asked for.
+    pub voices: Vec<(String, Option<f64>)>,
 }
 
 /// What is true about a footprint.
@@ -122,6 +122,8 @@ impl Truth {
             "bad_spectrum" if self.defects & LOST != 0 => Some(true),
             "bad_spectrum" => self.is_sound().then_some(false),
             _ if !self.is_sound() => None,
+            // Dust and ash cool the window as cloud does; what is said of cloud there is asked apart.
+            "cloudy" | "thin_cloud" if self.particles >= 0.1 => None,
             "cloudy" if effective > 0.5 || (low && effective > 0.15) => Some(true),
             "cloudy" => clear.then_some(false),
             "thin_cloud" if !low && (0.05..=0.6).contains(&effective) => Some(true),
@@ -149,6 +151,11 @@ impl Truth {
         self.land < 0.01 && self.surface_temperature > FREEZING
     }
 
+    /// Dust or ash that matters, whatever else is in the footprint.
+    pub fn is_thick_dust(&self) -> bool {
+        self.is_sound() && self.particles >= 0.5
+    }
+
     /// Cloud that matters: effective amount above 0.3, top above 2 km, which is near 800 hPa.
     pub fn is_cloud_aloft(&self) -> bool {
         self.is_sound() && self.effective > 0.3 && self.top < 800.0
@@ -163,7 +170,7 @@ impl Case {
         let voices_of = |flag: &str| {
             let flags = evidence.iter().flat_map(|evidence| &evidence.flags);
             let families = flags.filter(|one| one.flag == flag).flat_map(|one| &one.families);
-            families.map(|one| (one.family.clone(), one.log_odds.unwrap_or(0.0))).collect()
+            families.map(|one| (one.family.clone(), one.log_odds)).collect()
         };
         let found = screened.flags.iter().map(|result| {
             let probability = result.conclusions[at].probability;

@@ -11,13 +11,13 @@ use crate::cases::Granule;
 const PULL: f64 = 20.0;
 const SWEEPS: usize = 60;
 /// A family that is asked has a say, and none decides alone.
-const LEAST: f64 = 0.1;
-const MOST: f64 = 2.0;
+const WEIGHTS: (f64, f64) = (0.1, 2.0);
+const START: (f64, f64) = (-6.0, 6.0);
 /// Fewer cases of either kind calibrate nothing.
 const FEWEST: usize = 60;
 
-/// A footprint: what each family says, 0 where it is silent, and the truth.
-type Row = (Vec<f64>, bool);
+/// A footprint: what each family says, if it speaks, and the truth.
+type Row = (Vec<Option<f64>>, bool);
 
 /// The `start` and `weights` keys of each surface.
 pub fn weights(rulebook: &Rulebook, granules: &[Granule]) -> String {
@@ -61,32 +61,49 @@ fn rows(surface: &str, flag: &str, granules: &[Granule]) -> (Vec<String>, Vec<Ro
 /// Starting point, then weights. Each footprint counts once: probabilities are those of the set that is
 /// fitted to, in which cloud is about as frequent as clear sky.
 ///
-/// One number after the other is moved to its best value by Newton's step, until nothing moves.
+/// One number after the other is moved to its best value by Newton's step, until nothing moves. The
+/// coverage that the start counts with follows the weights from sweep to sweep.
 fn fit(rows: &[Row], families: usize) -> Vec<f64> {
     let mut found = vec![0.0; families + 1];
     found[1..].fill(0.5);
-    let mut sums: Vec<f64> =
-        rows.iter().map(|(voices, _)| 0.5 * voices.iter().sum::<f64>()).collect();
     for _ in 0..SWEEPS {
+        let coverages: Vec<f64> = rows.iter().map(|row| coverage(&row.0, &found[1..])).collect();
+        let mut sums: Vec<f64> = rows
+            .iter()
+            .zip(&coverages)
+            .map(|((voices, _), coverage)| coverage * found[0] + sum(voices, &found[1..]))
+            .collect();
         for place in 0..found.len() {
-            let lever = |voices: &[f64]| if place == 0 { 1.0 } else { voices[place - 1] };
+            let lever = |row: usize| match place {
+                0 => coverages[row],
+                place => rows[row].0[place - 1].unwrap_or(0.0),
+            };
             let (home, pull) = if place == 0 { (0.0, PULL * 0.1) } else { (1.0, PULL) };
             let (mut slope, mut bend) = (pull * (found[place] - home), pull);
-            for ((voices, truth), sum) in rows.iter().zip(&sums) {
+            for (row, sum) in sums.iter().enumerate() {
                 let probability = 1.0 / (1.0 + (-sum).exp());
-                let lever = lever(voices);
-                slope += (probability - f64::from(u8::from(*truth))) * lever;
-                bend += probability * (1.0 - probability) * lever * lever;
+                slope += (probability - f64::from(u8::from(rows[row].1))) * lever(row);
+                bend += probability * (1.0 - probability) * lever(row) * lever(row);
             }
             let step = (-slope / bend).clamp(-0.5, 0.5);
-            let new =
-                if place == 0 { found[0] + step } else { (found[place] + step).clamp(LEAST, MOST) };
+            let (least, most) = if place == 0 { START } else { WEIGHTS };
+            let new = (found[place] + step).clamp(least, most);
             let moved = new - found[place];
             found[place] = new;
-            for ((voices, _), sum) in rows.iter().zip(&mut sums) {
-                *sum += moved * lever(voices);
+            for (row, sum) in sums.iter_mut().enumerate() {
+                *sum += moved * lever(row);
             }
         }
     }
     found
+}
+
+fn sum(voices: &[Option<f64>], weights: &[f64]) -> f64 {
+    voices.iter().zip(weights).map(|(voice, weight)| weight * voice.unwrap_or(0.0)).sum()
+}
+
+/// Weight of the families that speak over that of all.
+fn coverage(voices: &[Option<f64>], weights: &[f64]) -> f64 {
+    let speaking = voices.iter().zip(weights).filter(|(voice, _)| voice.is_some());
+    speaking.map(|(_, weight)| weight).sum::<f64>() / weights.iter().sum::<f64>()
 }

@@ -62,10 +62,10 @@ pub const CLEAR_SEA: Question = Question {
     of: |case| case.truth.is_clear() && case.truth.is_sea(),
     holds: Case::is_alarm,
 };
-/// Dust of optical depth 0.5 or more over sea: flagged.
+/// Dust or ash of optical depth 0.5 or more over sea, no cloud in the footprint: flagged.
 pub const DUST: Question = Question {
     head: "dust or ash of 0.5 or more over sea: flagged",
-    of: |case| case.truth.is_sound() && case.truth.particles >= 0.5 && case.truth.is_sea(),
+    of: |case| case.truth.is_thick_dust() && case.truth.is_sea() && case.truth.effective < 0.1,
     holds: |case| case.is_set("dust_or_ash"),
 };
 /// Clear sea: flagged as dust.
@@ -92,7 +92,7 @@ pub const ASKED: [&Question; 6] = [&CLOUD, &CLEAR_SEA, &DUST, &NO_DUST, &LOSSES,
 
 /// What else one wants to know.
 #[allow(dead_code, reason = "the test asks for what has a limit")]
-pub const MORE: [Question; 6] = [
+pub const MORE: [Question; 8] = [
     Question {
         head: "thin high cloud, 0.05 to 0.3: flagged",
         of: |case| {
@@ -113,8 +113,18 @@ pub const MORE: [Question; 6] = [
     },
     Question {
         head: "dust of 0.5 or more over land: flagged",
-        of: |case| case.truth.is_sound() && case.truth.particles >= 0.5 && !case.truth.is_sea(),
+        of: |case| case.truth.is_thick_dust() && !case.truth.is_sea(),
         holds: |case| case.is_set("dust_or_ash"),
+    },
+    Question {
+        head: "the same with cloud of 0.1 or more: flagged",
+        of: |case| case.truth.is_thick_dust() && case.truth.effective >= 0.1,
+        holds: |case| case.is_set("dust_or_ash"),
+    },
+    Question {
+        head: "dust or ash of 0.5 or more, no cloud: flagged as cloud",
+        of: |case| case.truth.is_thick_dust() && case.truth.effective < 0.02,
+        holds: Case::is_cloud,
     },
     Question {
         head: "sulphur dioxide of 20 DU or more: flagged",

@@ -1,8 +1,10 @@
 //! What the tests of a flag add up to.
 //!
 //! Our own choice, calibrated and documented: margin m, log-odds l = 3 m; a family speaks with its
-//! strongest voice for the flag, or with the mean of those against; L = L0 + Σ w l,
-//! p = 1 / (1 + e^-L); coverage c = applicable weight / total weight; doubt = 1 - c |2 p - 1|.
+//! strongest voice for the flag, or with the mean of those against; coverage c = applicable weight /
+//! total weight; L = c L0 + Σ w l, p = 1 / (1 + e^-L); doubt = 1 - c |2 p - 1|. The start L0 is the
+//! counterweight to what all families say where there is nothing; where some are silent only their
+//! share of it counts, or silence would speak.
 
 /// Log-odds per unit of margin.
 const LOG_ODDS_PER_MARGIN: f64 = 3.0;
@@ -63,11 +65,11 @@ pub struct Conclusion {
 
 /// From families to a conclusion: weight and voice of each.
 pub fn conclude(start: f64, families: impl IntoIterator<Item = (f64, Option<f64>)>) -> Conclusion {
-    let (mut log_odds, mut speaking, mut total, mut heard) = (start, 0.0, 0.0, false);
+    let (mut voices, mut speaking, mut total, mut heard) = (0.0, 0.0, 0.0, false);
     for (weight, voice) in families {
         total += weight;
         if let Some(voice) = voice {
-            log_odds += weight * voice;
+            voices += weight * voice;
             speaking += weight;
             heard = true;
         }
@@ -75,8 +77,9 @@ pub fn conclude(start: f64, families: impl IntoIterator<Item = (f64, Option<f64>
     if !heard {
         return Conclusion { log_odds: f64::NAN, probability: f64::NAN, coverage: 0.0, doubt: 1.0 };
     }
-    let probability = 1.0 / (1.0 + (-log_odds).exp());
     let coverage = if total > 0.0 { speaking / total } else { 0.0 };
+    let log_odds = coverage * start + voices;
+    let probability = 1.0 / (1.0 + (-log_odds).exp());
     let doubt = 1.0 - coverage * (2.0 * probability - 1.0).abs();
     Conclusion { log_odds, probability, coverage, doubt }
 }

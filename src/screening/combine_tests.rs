@@ -27,15 +27,15 @@ fn guards_halve_and_a_test_may_speak_against_more_softly() {
 }
 
 /// Worked by hand: L0 = -1, two families of weight 1 and 0.5 speak +3 and -1.5, a third of weight
-/// 0.5 can't. L = -1 + 3 - 0.75 = 1.25, p = 1/(1 + e^-1.25) = 0.777300, c = 1.5/2 = 0.75,
-/// doubt = 1 - 0.75 x 0.554600 = 0.584050.
+/// 0.5 can't. c = 1.5/2 = 0.75, L = -0.75 + 3 - 0.75 = 1.5, p = 1/(1 + e^-1.5) = 0.817574,
+/// doubt = 1 - 0.75 x 0.635149 = 0.523638.
 #[test]
 fn three_families_worked_by_hand() {
     let conclusion = conclude(-1.0, [(1.0, Some(3.0)), (0.5, Some(-1.5)), (0.5, None)]);
     // The hand's six digits.
-    assert!((conclusion.probability - 0.777_300).abs() < 5e-7, "{conclusion:?}");
-    assert_eq!((conclusion.log_odds, conclusion.coverage), (1.25, 0.75));
-    assert!((conclusion.doubt - 0.584_050).abs() < 5e-7, "{conclusion:?}");
+    assert!((conclusion.probability - 0.817_574).abs() < 5e-7, "{conclusion:?}");
+    assert_eq!((conclusion.log_odds, conclusion.coverage), (1.5, 0.75));
+    assert!((conclusion.doubt - 0.523_638).abs() < 5e-7, "{conclusion:?}");
 }
 
 #[test]

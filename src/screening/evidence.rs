@@ -85,7 +85,7 @@ pub struct FlagEvidence {
     pub coverage: f64,
     /// 0 plain, 1 a coin toss or not tested.
     pub doubt: f64,
-    /// Log-odds before any test has spoken.
+    /// Log-odds before any test has spoken, in proportion to the coverage.
     pub start: f64,
     /// What each family says.
     pub families: Vec<FamilyVoice>,
@@ -178,7 +178,9 @@ impl Screened {
             probability: present(conclusion.probability),
             coverage: conclusion.coverage,
             doubt: conclusion.doubt,
-            start: surface.map_or(0.0, |at| self.rulebook.surfaces[at].start_of(&flag.flag)),
+            start: surface.map_or(0.0, |at| {
+                conclusion.coverage * self.rulebook.surfaces[at].start_of(&flag.flag)
+            }),
             families: seats.iter().map(voice).collect(),
         }
     }

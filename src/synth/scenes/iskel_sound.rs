@@ -57,14 +57,14 @@ impl Scene for IskelSound {
         let surface = water + ice * (floes - water);
         let ground = vec![(Surface::Sea, 1.0 - ice), (Surface::Snow, ice)];
         let mut footprint = clear(spot, air, surface, ground);
-        let deck = self.deck.at(spot.x, spot.y) - 0.5 - 0.6 * ice;
+        let deck = self.deck.at(spot.x, spot.y) - 0.9 - 0.3 * ice;
         let amount = over_footprint(spot.x, spot.y, spot.radius, |x, y| {
             ramp(0.8 * self.cells.at(x, y) + 1.4 * deck, 0.3, 1.0)
         });
         cover(&mut footprint, Particles::Droplets, 1.3 + 0.25 * deck, amount, 8.0);
-        let layered = ramp(self.middle.at(spot.x, spot.y) - spot.x / 350.0, 0.7, 1.3);
+        let layered = ramp(self.middle.at(spot.x, spot.y) - spot.x / 400.0, 0.9, 1.5);
         cover(&mut footprint, Particles::Droplets, 3.4 + layered, layered, 9.0 * layered);
-        let high = ramp(self.cirrus.at(spot.x, spot.y) + spot.x / 350.0, 0.6, 2.0);
+        let high = ramp(self.cirrus.at(spot.x, spot.y) + spot.x / 400.0, 0.9, 2.2);
         cover(&mut footprint, Particles::SmallIce, 7.2, ramp(high, 0.0, 0.3), 1.6 * high);
         Sighted { footprint, land: 0.0, so2: 0.0 }
     }
