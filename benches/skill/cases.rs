@@ -3,13 +3,19 @@
 use std::path::Path;
 
 use radsieve::granule::Opening;
+use radsieve::netcdf_files::{FileReader, ReadLimits, ReaderProgram};
 use radsieve::review::Review;
+use radsieve::screening::health::{Examined, Subject};
 use radsieve::screening::{Rulebook, Screened};
 use radsieve::system::Cancel;
+
+use crate::limits::Share;
 
 /// Defects that leave much of a spectrum without a value or a signal: dead detector, lost scan line,
 /// lost band. They make a spectrum bad; what is wrong with single channels does not.
 pub const LOST: i32 = 1 | 1 << 3 | 1 << 5;
+
+type Mishap = Box<dyn std::error::Error>;
 
 /// A granule that was screened.
 pub struct Granule {
@@ -17,6 +23,10 @@ pub struct Granule {
     pub name: String,
     /// Its footprints.
     pub cases: Vec<Case>,
+    /// Channels with a planted defect, and how many of them were found.
+    pub defective_channels: Share,
+    /// Sound channels, and how many of them were suspected.
+    pub sound_channels: Share,
 }
 
 /// A footprint.
@@ -29,6 +39,8 @@ pub struct Case {
     pub assessed: bool,
     /// What is concluded about each flag, in the order of the rulebook.
     pub flags: Vec<Found>,
+    /// Whether the spectra as a set make the tests call this one bad.
+    pub suspected: bool,
     /// Margin of each test, in the order of the rulebook; not a number where it does not speak.
     pub margins: Vec<f64>,
 }
@@ -70,19 +82,67 @@ pub struct Truth {
 const FREEZING: f64 = 271.35;
 
 impl Granule {
-    /// Reads and screens a synthetic granule; `voices` keeps what each family says.
-    pub fn screened(
+    /// Reads and screens a synthetic granule and examines its spectra as a set.
+    pub fn screened(opening: &Opening, file: &Path, rulebook: &Rulebook) -> Result<Self, Mishap> {
+        let review = Review::open(opening, file)?;
+        let screened = review.screen(rulebook, &Cancel::new())?;
+        let mut granule = Granule::of(&review, &screened, false)?;
+        if let Some(examined) = &screened.examined {
+            for (at, case) in granule.cases.iter_mut().enumerate() {
+                case.suspected = examined.suggests("bad_spectrum", at);
+            }
+            granule.judge_channels(file, examined)?;
+        }
+        Ok(granule)
+    }
+
+    /// Reads and screens a synthetic granule and keeps what each family of tests says.
+    #[allow(dead_code, reason = "only the fit asks for it")]
+    pub fn with_voices(
         opening: &Opening,
         file: &Path,
         rulebook: &Rulebook,
-        voices: bool,
-    ) -> Result<Granule, Box<dyn std::error::Error>> {
+    ) -> Result<Self, Mishap> {
         let review = Review::open(opening, file)?;
-        let screened = review.screen(rulebook, &Cancel::new())?;
-        let truths = truths(&review, screened.footprints())?;
+        review.granule().fill(&Cancel::new(), &mut |_| {})?;
+        Granule::of(&review, &review.screen_so_far(rulebook), true)
+    }
+
+    fn of(review: &Review, screened: &Screened, voices: bool) -> Result<Self, Mishap> {
+        let truths = truths(review, screened.footprints())?;
         let cases = truths.into_iter().enumerate();
-        let cases = cases.map(|(at, truth)| Case::of(&screened, at, truth, voices)).collect();
-        Ok(Granule { name: review.granule().name(), cases })
+        let cases = cases.map(|(at, truth)| Case::of(screened, at, truth, voices)).collect();
+        let (defective_channels, sound_channels) = (Share::default(), Share::default());
+        Ok(Granule { name: review.granule().name(), cases, defective_channels, sound_channels })
+    }
+
+    /// Compares the channels that were suspected with those that something was done to.
+    fn judge_channels(&mut self, file: &Path, examined: &Examined) -> Result<(), Mishap> {
+        const TRUTH: &str = "truth/channel_defects";
+        let program = ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve"));
+        let reader = FileReader::open(&program, file, &ReadLimits::default())?;
+        let truths = reader.index().variables.iter().filter(|one| one.path.starts_with(TRUTH));
+        for variable in truths {
+            let length = reader.index().dimensions[variable.dimensions[0]].length;
+            let planted = reader.read(variable, &[0], &[length])?.to_f64();
+            // `truth/channel_defects_longwave` belongs to `radiance_longwave`.
+            let ending = &variable.path[TRUTH.len()..];
+            for (index, planted) in planted.into_iter().enumerate() {
+                let suspected = examined.of_channels().any(|finding| match finding.subject {
+                    Subject::Channel(channel) => {
+                        channel.index == index && examined.band_name(channel.band).ends_with(ending)
+                    }
+                    _ => false,
+                });
+                let share = match planted != 0.0 {
+                    true => &mut self.defective_channels,
+                    false => &mut self.sound_channels,
+                };
+                share.all += 1;
+                share.held += usize::from(suspected);
+            }
+        }
+        Ok(())
     }
 }
 
@@ -186,6 +246,7 @@ impl Case {
             surface: surface.cloned().unwrap_or_default(),
             assessed: screened.assessed[at],
             flags: found.collect(),
+            suspected: false,
             margins: screened.tests.iter().map(|test| test.margins[at]).collect(),
         }
     }
@@ -198,6 +259,11 @@ impl Case {
     /// Whether the tests set a flag.
     pub fn is_set(&self, flag: &str) -> bool {
         self.found(flag).is_some_and(|one| one.set)
+    }
+
+    /// Whether the spectrum, or a band of it, is called bad by a test or by the spectra as a set.
+    pub fn is_bad(&self) -> bool {
+        self.suspected || self.is_set("bad_spectrum")
     }
 
     /// Whether the tests see cloud of any kind.

@@ -78,17 +78,20 @@ pub const NO_DUST: Question = Question {
 pub const LOSSES: Question = Question {
     head: "lost lines, lost bands, dead detectors: flagged bad",
     of: |case| case.truth.defects & LOST != 0,
-    holds: |case| case.is_set("bad_spectrum"),
+    holds: Case::is_bad,
+};
+/// Striping, spikes, repeated lines, missing stretches: flagged bad.
+pub const SLIGHT: Question = Question {
+    head: "striping, spikes, repeated lines, missing stretches: flagged bad",
+    of: |case| !case.truth.is_sound() && case.truth.defects & LOST == 0,
+    holds: Case::is_bad,
 };
 /// Sound spectra: flagged bad.
-pub const SOUND: Question = Question {
-    head: "sound: flagged bad",
-    of: |case| case.truth.is_sound(),
-    holds: |case| case.is_set("bad_spectrum"),
-};
+pub const SOUND: Question =
+    Question { head: "sound: flagged bad", of: |case| case.truth.is_sound(), holds: Case::is_bad };
 /// The questions with a limit.
 #[allow(dead_code, reason = "the test asks one by one")]
-pub const ASKED: [&Question; 6] = [&CLOUD, &CLEAR_SEA, &DUST, &NO_DUST, &LOSSES, &SOUND];
+pub const ASKED: [&Question; 7] = [&CLOUD, &CLEAR_SEA, &DUST, &NO_DUST, &LOSSES, &SLIGHT, &SOUND];
 
 /// What else one wants to know.
 #[allow(dead_code, reason = "the test asks for what has a limit")]
@@ -132,6 +135,18 @@ pub const MORE: [Question; 8] = [
         holds: |case| case.is_set("so2"),
     },
     Question { head: "not assessed", of: |_| true, holds: |case| !case.assessed },
+];
+
+/// Single defects of spectra, by bit.
+#[allow(dead_code, reason = "the bench tells them apart")]
+pub const DEFECTS: [(&str, i32); 7] = [
+    ("dead detector", 1),
+    ("lost scan line", 1 << 3),
+    ("lost band", 1 << 5),
+    ("striping", 1 << 1),
+    ("spike", 1 << 2),
+    ("repeated scan line", 1 << 4),
+    ("missing stretch", 1 << 6),
 ];
 
 /// Where scenes lie.

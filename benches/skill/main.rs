@@ -1,9 +1,9 @@
 //! How well the built-in rulebook does on synthetic granules, against their truth.
 //!
 //! `cargo bench --bench skill` makes perturbed granules and prints the tables of `docs/skill.md`;
-//! `-- --fit` makes others and prints starting points and weights fitted to them. `--keep DIR` keeps
-//! the granules and takes those that are there, `--rules FILE` takes another rulebook, and files in
-//! place of a set may be named. Synthetic skill is not real skill.
+//! `-- --write` puts them there. `-- --fit` makes others and prints starting points and weights fitted
+//! to them. `--keep DIR` keeps the granules and takes those that are there, `--rules FILE` takes another
+//! rulebook, and files in place of a set may be named. Synthetic skill is not real skill.
 #![allow(clippy::print_stdout)]
 
 mod cases;
@@ -26,6 +26,7 @@ type Mishap = Box<dyn std::error::Error>;
 #[derive(Default)]
 struct Wish {
     fit: bool,
+    write: bool,
     keep: Option<PathBuf>,
     rules: Option<PathBuf>,
     files: Vec<PathBuf>,
@@ -38,6 +39,7 @@ fn wish() -> Result<Wish, Mishap> {
         let mut value = || arguments.next().ok_or(format!("{argument} wants a value"));
         match argument.as_str() {
             "--fit" => wish.fit = true,
+            "--write" => wish.write = true,
             "--keep" => wish.keep = Some(value()?.into()),
             "--rules" => wish.rules = Some(value()?.into()),
             // What cargo itself hands over.
@@ -60,11 +62,28 @@ fn main() -> Result<(), Mishap> {
         true => of_set(&wish, &rulebook)?,
         false => screened(&wish.files, &rulebook, wish.fit)?,
     };
-    match wish.fit {
-        true => print!("{}", fit::weights(&rulebook, &granules)),
-        false => print!("{}", tables::all(&rulebook, &granules)),
+    if wish.fit {
+        print!("{}", fit::weights(&rulebook, &granules));
+        return Ok(());
     }
-    Ok(())
+    let tables = tables::all(&rulebook, &granules);
+    match wish.write {
+        true => write(&tables),
+        false => {
+            print!("{tables}");
+            Ok(())
+        }
+    }
+}
+
+/// Puts the tables in place of those of the document.
+fn write(tables: &str) -> Result<(), Mishap> {
+    const BEFORE: &str =
+        "<!-- What follows is written by `cargo bench --bench skill -- --write`. -->";
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("docs/skill.md");
+    let text = std::fs::read_to_string(&path)?;
+    let (ours, _) = text.split_once(BEFORE).ok_or("docs/skill.md lacks the line before tables")?;
+    Ok(std::fs::write(path, format!("{ours}{BEFORE}\n\n{tables}"))?)
 }
 
 fn of_set(wish: &Wish, rulebook: &Rulebook) -> Result<Vec<Granule>, Mishap> {
@@ -84,5 +103,6 @@ fn of_set(wish: &Wish, rulebook: &Rulebook) -> Result<Vec<Granule>, Mishap> {
 
 fn screened(files: &[PathBuf], rulebook: &Rulebook, fit: bool) -> Result<Vec<Granule>, Mishap> {
     let opening = Opening::new(ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve")));
-    files.iter().map(|file| Granule::screened(&opening, file, rulebook, fit)).collect()
+    let one = if fit { Granule::with_voices } else { Granule::screened };
+    files.iter().map(|file| one(&opening, file, rulebook)).collect()
 }

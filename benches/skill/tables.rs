@@ -5,7 +5,7 @@ use std::fmt::Write as _;
 use radsieve::screening::Rulebook;
 
 use crate::cases::{Case, Granule};
-use crate::limits::{ASKED, CLIMATES, MORE, Question, Share, of_scenes};
+use crate::limits::{ASKED, CLIMATES, DEFECTS, MORE, Question, Share, of_scenes};
 
 const FLAGS: [&str; 5] = ["cloudy", "thin_cloud", "dust_or_ash", "so2", "bad_spectrum"];
 const SCENES: [&str; 7] = [
@@ -20,13 +20,57 @@ const SCENES: [&str; 7] = [
 
 /// All tables.
 pub fn all(rulebook: &Rulebook, granules: &[Granule]) -> String {
-    let mut text = format!("Rulebook {} ({})\n", rulebook.name, rulebook.fingerprint);
-    text += &climates(granules);
-    text += &scenes(granules);
-    text += &confusion(granules);
-    text += &single(rulebook, granules);
-    text += &reliability(granules);
-    text += &curve(granules);
+    let mut text = format!(
+        "Measured with rulebook `{}`, fingerprint `{}`, on {} granules with {} footprints.\n",
+        rulebook.name,
+        rulebook.fingerprint,
+        granules.len(),
+        granules.iter().map(|granule| granule.cases.len()).sum::<usize>(),
+    );
+    for (title, table) in [
+        ("What has a limit, by climate", climates(granules)),
+        ("The same and more, by scene", scenes(granules)),
+        ("Planted defects", defects(granules)),
+        ("Hits and misses", confusion(granules)),
+        ("Each test alone", single(rulebook, granules)),
+        ("Reliability", RELIABILITY.to_owned() + &reliability(granules)),
+        ("Hits against false alarms", CURVE.to_owned() + &curve(granules)),
+    ] {
+        text += &format!("\n## {title}\n{table}");
+    }
+    text
+}
+
+const RELIABILITY: &str = "
+How often a flag holds where the tests give it a probability: in the bar, `#` is how often it held, `|` how often
+it was promised. Footprints of one cloud are not independent, so the counts promise more than they hold.
+";
+const CURVE: &str = "
+As the probability from which a flag is set varies; the rulebook sets it above 0.5.
+";
+
+/// Which planted defects were found.
+fn defects(granules: &[Granule]) -> String {
+    let mut text = "\n| defect | found |\n| --- | --- |\n".to_owned();
+    let cases = || granules.iter().flat_map(|granule| &granule.cases);
+    for (name, bit) in DEFECTS {
+        let mut share = Share::default();
+        for case in cases().filter(|case| case.truth.defects & bit != 0) {
+            share.all += 1;
+            share.held += usize::from(case.is_bad());
+        }
+        let _ = writeln!(text, "| {name}, by footprint | {share} |");
+    }
+    let channels = |of: fn(&Granule) -> Share| {
+        granules.iter().map(of).fold(Share::default(), |sum, share| Share {
+            held: sum.held + share.held,
+            all: sum.all + share.all,
+        })
+    };
+    let planted = channels(|granule| granule.defective_channels);
+    let sound = channels(|granule| granule.sound_channels);
+    let _ = writeln!(text, "| dead, noisy or popping channel | {planted} |");
+    let _ = writeln!(text, "| sound channel, suspected | {sound} |");
     text
 }
 

@@ -1,8 +1,8 @@
 //! The imaginary Brindle sounder in its versions: channels, responses, noise.
 
 use super::storage::Storage;
+use super::typical_noise::{FINE_INTERFEROMETER, GRATING, INTERFEROMETER};
 use crate::forward::Response;
-use crate::spectral::planck_slope;
 
 /// How the noise of neighbouring channels goes together.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -57,76 +57,6 @@ pub struct Instrument {
     pub axis_per_metre: bool,
 }
 
-/// NEdT by wavenumber (K) for scenes of a temperature.
-struct NoiseTable {
-    temperature: f64,
-    points: &'static [(f64, f64)],
-}
-
-/// Typical noise of the three classes of sounders.
-const INTERFEROMETER_NOISE: NoiseTable = NoiseTable {
-    temperature: 270.0,
-    points: &[
-        (650.0, 0.15),
-        (700.0, 0.10),
-        (750.0, 0.07),
-        (900.0, 0.05),
-        (1100.0, 0.07),
-        (1210.0, 0.06),
-        (1600.0, 0.06),
-        (1750.0, 0.08),
-        (2155.0, 0.12),
-        (2400.0, 0.22),
-        (2550.0, 0.45),
-    ],
-};
-const FINE_INTERFEROMETER_NOISE: NoiseTable = NoiseTable {
-    temperature: 280.0,
-    points: &[
-        (645.0, 0.30),
-        (700.0, 0.22),
-        (900.0, 0.15),
-        (1600.0, 0.13),
-        (1750.0, 0.15),
-        (2150.0, 0.3),
-        (2400.0, 0.6),
-        (2700.0, 2.5),
-    ],
-};
-const GRATING_NOISE: NoiseTable = NoiseTable {
-    temperature: 250.0,
-    points: &[
-        (650.0, 0.48),
-        (700.0, 0.33),
-        (720.0, 0.24),
-        (900.0, 0.15),
-        (950.0, 0.10),
-        (1100.0, 0.10),
-        (1300.0, 0.09),
-        (1600.0, 0.11),
-        (2150.0, 0.11),
-        (2400.0, 0.14),
-        (2665.0, 0.25),
-    ],
-};
-
-impl NoiseTable {
-    fn nedn(&self, wavenumbers: &[f64]) -> Vec<f32> {
-        wavenumbers
-            .iter()
-            .map(|nu| {
-                let above = self.points.partition_point(|point| point.0 < *nu);
-                let high = self.points[above.min(self.points.len() - 1)];
-                let low = self.points[above.saturating_sub(1)];
-                let width = (high.0 - low.0).max(1e-9);
-                let share = ((nu - low.0) / width).clamp(0.0, 1.0);
-                let nedt = low.1 + share * (high.1 - low.1);
-                (nedt * planck_slope(*nu, self.temperature)) as f32
-            })
-            .collect()
-    }
-}
-
 impl Band {
     /// Factor on the noise for a radiance: photon noise grows with the square root of the signal.
     pub fn growth(&self, channel: usize, radiance: f32) -> f32 {
@@ -148,7 +78,7 @@ impl Band {
         let wavenumbers: Vec<f64> = (0..count).map(|i| first + i as f64 * step).collect();
         Band {
             name,
-            nedn: INTERFEROMETER_NOISE.nedn(&wavenumbers),
+            nedn: INTERFEROMETER.nedn(&wavenumbers),
             wavenumbers,
             response: Response::Hamming { path_difference },
             apodisation: "Hamming",
@@ -169,7 +99,7 @@ impl Band {
             .collect();
         Band {
             name,
-            nedn: FINE_INTERFEROMETER_NOISE.nedn(&wavenumbers),
+            nedn: FINE_INTERFEROMETER.nedn(&wavenumbers),
             wavenumbers,
             response: Response::Gaussian { width: 0.5 },
             apodisation: "Gaussian, FWHM 0.5 cm-1",
@@ -184,11 +114,11 @@ impl Band {
         let wavenumbers = grating_channels(arrays, count);
         let noise_reference = wavenumbers
             .iter()
-            .map(|nu| crate::spectral::planck(*nu, GRATING_NOISE.temperature) as f32)
+            .map(|nu| crate::spectral::planck(*nu, GRATING.temperature) as f32)
             .collect();
         Band {
             name: "",
-            nedn: GRATING_NOISE.nedn(&wavenumbers),
+            nedn: GRATING.nedn(&wavenumbers),
             wavenumbers,
             response: Response::Grating { resolving_power: 1200.0 },
             apodisation: "none",

@@ -21,6 +21,7 @@ mod storage;
 mod sun;
 mod swath;
 mod truth;
+mod typical_noise;
 
 pub use granule_file::{ContentError, SynthError, make_granule};
 pub use recipe::{DEFAULT_SEED, Recipe};

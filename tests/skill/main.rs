@@ -23,7 +23,7 @@ fn skill_set() -> Vec<Granule> {
     let mut granules = Vec::new();
     for recipe in sets::SKILL.recipes() {
         let file = sets::made(recipe, folder.path()).unwrap();
-        granules.push(Granule::screened(&opening, &file, &rulebook, false).unwrap());
+        granules.push(Granule::screened(&opening, &file, &rulebook).unwrap());
         std::fs::remove_file(file).unwrap();
     }
     granules
