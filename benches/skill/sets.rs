@@ -8,19 +8,18 @@ use std::path::{Path, PathBuf};
 use radsieve::synth::{Recipe, SceneName, Shape, make_granule};
 use radsieve::system::Cancel;
 
-/// A set of granules: every scene by both classes of instrument.
+/// A set of granules: every scene by both classes of instrument, once for each seed.
 pub struct Set {
-    /// First seed of the interferometer's granules, then of the grating's.
-    seeds: [u64; 2],
-    /// Granules of each scene and instrument.
-    each: u64,
+    /// Seeds of the interferometer's granules, then of the grating's.
+    seeds: [&'static [u64]; 2],
 }
 
 /// Weights, starting points and re-derived limits come from these.
 #[allow(dead_code, reason = "the test only measures")]
-pub const CALIBRATION: Set = Set { seeds: [101, 151], each: 3 };
+pub const CALIBRATION: Set =
+    Set { seeds: [&[1, 2, 11, 12, 101, 102, 103], &[51, 52, 61, 62, 151, 152, 153]] };
 /// Skill is measured on these.
-pub const SKILL: Set = Set { seeds: [1, 51], each: 2 };
+pub const SKILL: Set = Set { seeds: [&[21, 22], &[71, 72]] };
 
 /// 12 scan lines of 10 clusters, 24 scan lines of 30 footprints.
 const SHAPES: [Shape; 2] = [
@@ -33,8 +32,8 @@ impl Set {
     pub fn recipes(&self) -> Vec<Recipe> {
         let mut recipes = Vec::new();
         for scene in SceneName::ALL {
-            for (shape, first) in SHAPES.into_iter().zip(self.seeds) {
-                for seed in first..first + self.each {
+            for (shape, seeds) in SHAPES.into_iter().zip(self.seeds) {
+                for seed in seeds.iter().copied() {
                     recipes.push(Recipe { scene, shape, seed, perturbed: Some(seed) });
                 }
             }
