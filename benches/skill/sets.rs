@@ -34,7 +34,13 @@ impl Set {
         for scene in SceneName::ALL {
             for (shape, seeds) in SHAPES.into_iter().zip(self.seeds) {
                 for seed in seeds.iter().copied() {
-                    recipes.push(Recipe { scene, shape, seed, perturbed: Some(seed) });
+                    recipes.push(Recipe {
+                        scene,
+                        shape,
+                        seed,
+                        perturbed: Some(seed),
+                        faulty: false,
+                    });
                 }
             }
         }
