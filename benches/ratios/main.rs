@@ -11,6 +11,7 @@ mod inversion;
 mod picturing;
 mod python;
 mod reading;
+mod screening;
 mod reviewing;
 mod stopwatch;
 mod table;
@@ -48,5 +49,6 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     for section in reviewing::sections(&full)? {
         println!("{section}");
     }
+    println!("{}", screening::section(&full)?);
     Ok(())
 }

@@ -9,6 +9,7 @@ use serde_json::{Value, json};
 use super::Exit;
 use super::exit::UsageError;
 use crate::layers::{INDICES, Index};
+use crate::screening::health::LIMITS;
 use crate::screening::{BUILTIN_TEXT, Rulebook, Surface, Test, Threshold, Way, builtin};
 use crate::system::clean_text;
 
@@ -156,7 +157,15 @@ fn write_text(rulebook: &Rulebook, out: &mut dyn Write) -> std::io::Result<()> {
         }
     }
     writeln!(out, "\nTests:")?;
-    rulebook.tests.iter().try_for_each(|test| write_test(rulebook, test, out))
+    rulebook.tests.iter().try_for_each(|test| write_test(rulebook, test, out))?;
+    writeln!(out, "\nInstrument health and unusual spectra:")?;
+    for kind in LIMITS {
+        let unit = if kind.unit == "1" { "" } else { kind.unit };
+        writeln!(out, "  {} = {} {unit}", kind.key, rulebook.health.value(kind))?;
+        writeln!(out, "    {}", kind.meaning)?;
+        writeln!(out, "      source: {}", kind.source)?;
+    }
+    Ok(())
 }
 
 fn write_index(index: &Index, out: &mut dyn Write) -> std::io::Result<()> {
@@ -258,6 +267,16 @@ fn as_json(rulebook: &Rulebook) -> Value {
             .map(|family| json!({ "name": family.name, "sees": family.sees }))
             .collect::<Vec<_>>(),
         "definitions": definitions.collect::<Vec<_>>(),
+        "health": LIMITS
+            .iter()
+            .map(|kind| json!({
+                "limit": kind.key,
+                "value": rulebook.health.value(kind),
+                "unit": kind.unit,
+                "meaning": kind.meaning,
+                "source": kind.source,
+            }))
+            .collect::<Vec<_>>(),
         "tests": rulebook.tests.iter().map(|test| test_json(rulebook, test)).collect::<Vec<_>>(),
     })
 }

@@ -104,7 +104,8 @@ impl Review {
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
         self.granule.fill(cancel, &mut |_| {})?;
         let screened = self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))?;
-        let examined = examine(&self.granule, &rulebook.health, self.bases.as_ref(), cancel)?;
+        let (bases, left_out) = (self.bases.as_ref(), &self.producer.left_out);
+        let examined = examine(&self.granule, &rulebook.health, bases, left_out, cancel)?;
         Ok(Screened { examined: Some(examined), ..screened })
     }
 

@@ -4,6 +4,7 @@ use rand_chacha::ChaCha8Rng;
 use rand_chacha::rand_core::{Rng, SeedableRng};
 
 use super::instrument::{Band, Instrument};
+use super::shift::shift;
 use super::swath::Swath;
 use crate::spectral::planck_slope;
 
@@ -279,7 +280,7 @@ fn spoil_by(defect: &Defect, at: &Place, band: &Band, noise: &[f32], spectrum: &
             NOISY_DETECTOR
         }
         Defect::Shift { band: b, detector, ppm } if (b, detector) == (at.band, at.detector) => {
-            shift(band, ppm, spectrum);
+            shift(&band.wavenumbers, ppm, spectrum);
             SHIFT
         }
         Defect::Ringing { band: b, first, last, noises }
@@ -329,27 +330,6 @@ fn spoil_by(defect: &Defect, at: &Place, band: &Band, noise: &[f32], spectrum: &
     }
 }
 
-/// What a spectrum looks like to a detector whose wavenumbers are off by `ppm`: less the shift times
-/// the slope, which is that of the band-limited function through the channels
-/// (`sum (-1)^k / k (R[i+k] - R[i-k])` per channel), tapered. Ends of the band stay as they are.
-fn shift(band: &Band, ppm: f64, spectrum: &mut [f32]) {
-    const REACH: usize = 16;
-    let before = spectrum.to_vec();
-    for at in REACH..spectrum.len().saturating_sub(REACH) {
-        let spacing = 0.5 * (band.wavenumbers[at + 1] - band.wavenumbers[at - 1]);
-        let slope: f64 = (1..=REACH)
-            .map(|k| {
-                let taper =
-                    (0.5 * std::f64::consts::PI * k as f64 / (REACH + 1) as f64).cos().powi(2);
-                let sign = if k % 2 == 0 { -1.0 } else { 1.0 };
-                let step = f64::from(before[at + k]) - f64::from(before[at - k]);
-                sign * taper / k as f64 * step
-            })
-            .sum();
-        spectrum[at] -= (1e-6 * ppm * band.wavenumbers[at] * slope / spacing) as f32;
-    }
-}
-
 /// The band's channel nearest to a wavenumber, if it lies within 1 cm-1.
 fn nearest(band: &Band, wavenumber: f64) -> Option<usize> {
     let distance = |index: &usize| (band.wavenumbers[*index] - wavenumber).abs();
@@ -375,39 +355,6 @@ fn channel_bits(defects: &[Defect], instrument: &Instrument) -> Vec<Vec<i32>> {
         bits
     };
     instrument.bands.iter().map(of_band).collect()
-}
-
-/// One defect of every kind, as far as the instrument has bands and detectors for them.
-pub fn every_kind(instrument: &Instrument, swath: &Swath) -> Vec<Defect> {
-    let last_band = instrument.bands.len() - 1;
-    let middle_band = last_band.min(1);
-    let (lines, positions) = (swath.lines, swath.positions);
-    let mut defects = Vec::new();
-    if swath.detectors() >= 4 {
-        defects.push(Defect::Shift { band: 0, detector: 3, ppm: 25.0 });
-        defects.push(Defect::NoisyDetector { band: middle_band, detector: 0, factor: 3.0 });
-        defects.push(Defect::Striping { band: middle_band, detector: 2, kelvin: 0.7 });
-        defects.push(Defect::DeadDetector { band: last_band, detector: 1 });
-    }
-    let ringing = ((lines * 3 / 4, 2), (lines * 3 / 4 + 1, positions / 2));
-    let lost = ((lines / 2, positions / 2), (lines / 2 + 1, positions - 1));
-    defects.extend([
-        Defect::PoppingChannel {
-            wavenumber: 724.5,
-            noises: 14.0,
-            first: lines / 4,
-            last: lines / 2,
-        },
-        Defect::NoisyChannel { wavenumber: 699.0, factor: 6.0 },
-        Defect::DeadChannel { wavenumber: 1322.0 },
-        Defect::Ringing { band: 0, first: ringing.0, last: ringing.1, noises: 3.0 },
-        Defect::Spikes { count: 14, noises: 15.0 },
-        Defect::LostLine { line: lines - 2 },
-        Defect::RepeatedLine { line: 4.min(lines - 1) },
-        Defect::BandLost { band: 0, first: lost.0, last: lost.1 },
-        Defect::Fill { count: 9 },
-    ]);
-    defects
 }
 
 #[cfg(test)]
@@ -440,21 +387,6 @@ mod tests {
         let defect = Defect::BandLost { band: 1, first: (2, 2), last: (3, 5) };
         assert!(spoiled(defect, &place(1)).0[0].is_nan());
         assert_eq!(spoiled(defect, &place(0)).0[0], 80.0);
-    }
-
-    #[test]
-    fn a_shift_moves_a_wave_by_what_it_should() {
-        let band = &Instrument::reduced_interferometer().bands[0];
-        // A wave of five channels, its phase moved by 2 pi / 5 times the shift in channels.
-        let wave = |nu: f64| (2.0 * std::f64::consts::PI * nu / (5.0 * 0.625)).sin();
-        let mut spectrum: Vec<f32> =
-            band.wavenumbers.iter().map(|nu| 50.0 + wave(*nu) as f32).collect();
-        shift(band, 20.0, &mut spectrum);
-        for (value, nu) in spectrum.iter().zip(&band.wavenumbers).skip(40).take(200) {
-            let expected = 50.0 + wave(nu * (1.0 - 20e-6));
-            // f32 at 50: 4e-6; the taper spoils the slope by less than a hundredth of 0.045.
-            assert!((f64::from(*value) - expected).abs() < 1e-3, "{nu}: {value} {expected}");
-        }
     }
 
     #[test]

@@ -5,6 +5,7 @@
 //! **Never** is used by what it tests.
 
 mod defects;
+mod faulty;
 mod field;
 mod file_values;
 mod file_variables;
@@ -16,6 +17,7 @@ mod recipe;
 mod scene;
 mod scenes;
 mod shape;
+mod shift;
 mod spectra;
 mod storage;
 mod sun;

@@ -1,6 +1,7 @@
 //! What makes a granule: the same recipe gives the same values on any machine.
 
-use super::defects::{Defect, every_kind};
+use super::defects::Defect;
+use super::faulty::every_kind;
 use super::instrument::Instrument;
 use super::perturbation::Perturbation;
 use super::scene::Setting;

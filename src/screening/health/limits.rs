@@ -108,6 +108,17 @@ mod tests {
     use super::*;
 
     #[test]
+    fn the_document_names_every_limit() {
+        let document = include_str!("../../../docs/rules.md");
+        for kind in LIMITS {
+            let unit = if kind.unit == "1" { String::new() } else { format!(" {}", kind.unit) };
+            let row = format!("| `{}` | {} | {}{unit} |", kind.key, kind.meaning, kind.default);
+            assert!(document.contains(&row), "docs/rules.md lacks\n{row}");
+            assert!(document.contains(kind.source), "docs/rules.md lacks\n{}", kind.source);
+        }
+    }
+
+    #[test]
     fn every_limit_has_a_place_of_its_own() {
         let mut limits = HealthLimits::default();
         for (number, kind) in LIMITS.iter().enumerate() {

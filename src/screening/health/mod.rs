@@ -2,9 +2,11 @@
 //!
 //! No judgement here looks at anything but the spectra, and the noise that the file gives.
 
+mod band_work;
 mod channels;
 mod detectors;
 mod examine;
+mod examined;
 mod finding;
 mod grid;
 mod limits;
@@ -16,7 +18,8 @@ mod spectra;
 
 pub use channels::ChannelNoise;
 pub use detectors::DetectorNumbers;
-pub use examine::{BandHealth, BasisOrigin, Examined, UnusualSpectrum, examine, training_rows};
+pub use examine::{examine, training_rows};
+pub use examined::{BandHealth, BasisOrigin, Examined, UnusualSpectrum};
 pub use finding::{Check, Finding, Subject};
 pub use grid::ScanGrid;
 pub use limits::{HealthLimits, LIMITS, LimitKind};

@@ -10,18 +10,28 @@ use crate::system::Cancel;
 #[derive(Debug)]
 pub struct Spectra<'g> {
     granule: &'g Granule,
+    left_out: &'g [bool],
     cancel: &'g Cancel,
     fault: OnceLock<GranuleError>,
 }
 
 impl<'g> Spectra<'g> {
-    /// Reads until `cancel` is asked for.
-    pub fn new(granule: &'g Granule, cancel: &'g Cancel) -> Self {
-        Self { granule, cancel, fault: OnceLock::new() }
+    /// Reads until `cancel` is asked for. Footprints that are `left_out` (none where it is empty) have
+    /// no values.
+    pub fn new(granule: &'g Granule, left_out: &'g [bool], cancel: &'g Cancel) -> Self {
+        Self { granule, left_out, cancel, fault: OnceLock::new() }
+    }
+
+    /// Whether a footprint is left out.
+    pub fn leaves_out(&self, footprint: usize) -> bool {
+        self.left_out.get(footprint).copied().unwrap_or(false)
     }
 
     /// Missing where they cannot be read, and from then on.
     fn values(&self, band: usize, footprint: usize, out: &mut Vec<f64>) {
+        if self.leaves_out(footprint) {
+            return self.nothing(band, out);
+        }
         let read = match (self.fault.get(), self.cancel.is_cancelled()) {
             (None, false) => self.granule.values(band, footprint, Some(self.cancel), out),
             _ => Err(GranuleError::Cancelled),
@@ -29,9 +39,13 @@ impl<'g> Spectra<'g> {
         if let Err(error) = read {
             // What could not be read first is told.
             let _ = self.fault.set(error);
-            out.clear();
-            out.resize(self.granule.bands()[band].channels(), f64::NAN);
+            self.nothing(band, out);
         }
+    }
+
+    fn nothing(&self, band: usize, out: &mut Vec<f64>) {
+        out.clear();
+        out.resize(self.granule.bands()[band].channels(), f64::NAN);
     }
 
     /// What could not be read, if anything.

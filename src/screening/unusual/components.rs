@@ -111,6 +111,39 @@ mod tests {
         }
     }
 
+    /// The table's matrix, as its second line says.
+    fn tabulated() -> Mat<f64> {
+        let value = |row: usize, channel: usize| {
+            let (i, j) = (row as f64, channel as f64);
+            30.0 * (0.7 * i + 0.2).sin() * (0.3 * j).cos()
+                + 11.0 * (1.9 * i).cos() * (0.5 * j + 0.4).sin()
+                + 4.0 * (2.6 * i + 0.01 * i * i).sin() * (1.1 * j).cos()
+                + 0.2 * (3.7 * i * j + i - 2.0 * j).sin()
+        };
+        let mean = |channel| (0..40).map(|row| value(row, channel)).sum::<f64>() / 40.0;
+        let means: Vec<f64> = (0..24).map(mean).collect();
+        Mat::from_fn(40, 24, |row, channel| value(row, channel) - means[channel])
+    }
+
+    #[test]
+    fn the_components_are_those_of_lapack() {
+        let table = include_str!("../../../tests/reference_tables/principal_components.csv");
+        let found = leading_components(tabulated().as_ref(), 3, POWER_STEPS).unwrap();
+        let rows = table.lines().skip(3);
+        for (component, row) in rows.enumerate() {
+            let numbers: Vec<f64> =
+                row.split(',').skip(1).map(|text| text.parse().unwrap()).collect();
+            let off = found.variances[component] / numbers[0] - 1.0;
+            // As above: what the spare vectors miss.
+            assert!(off.abs() < 1e-6, "{component}: {off}");
+            let vector = found.vectors.col(component);
+            let sign = numbers[1..].iter().zip(vector.iter()).map(|(a, b)| a * b).sum::<f64>();
+            for (expected, found) in numbers[1..].iter().zip(vector.iter()) {
+                assert!((expected - sign.signum() * found).abs() < 1e-5, "{component}");
+            }
+        }
+    }
+
     #[test]
     fn threads_change_nothing_and_neither_does_a_second_time() {
         let rows = rows(300, 200);

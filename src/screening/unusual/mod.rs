@@ -3,6 +3,8 @@
 mod basis;
 mod components;
 mod fit;
+#[cfg(test)]
+mod fit_tests;
 mod residuals;
 mod saved;
 
