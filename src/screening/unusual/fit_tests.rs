@@ -51,8 +51,9 @@ fn noise_its_correlations_and_the_number_of_components_are_found() {
     assert_eq!(found.basis.components(), 3);
     assert!(found.set_aside.iter().all(|aside| !aside));
     for noise in &found.noise {
-        // 200 pairs know a median deviation to 1.17 / sqrt(400), 6 %; three and a half of those.
-        assert!((noise / NOISE - 1.0).abs() < 0.2, "{noise}");
+        // 200 differences know a median deviation to 1.17 / sqrt(200), 8 %; of 120 channels none is off
+        // by more than three and a half of those.
+        assert!((noise / NOISE - 1.0).abs() < 0.3, "{noise}");
     }
     // Published: 0.625 and 0.133, nothing beyond. 24,000 products, less what three components take.
     let expected = [0.625, 0.133, 0.0, 0.0];
@@ -69,7 +70,7 @@ fn a_channel_that_explains_itself_is_set_aside_and_its_noise_told() {
     let found = fitted(&rows(|_, channel, noise| if channel == 50 { 12.0 * noise } else { noise }));
     assert_eq!(found.set_aside.iter().filter(|aside| **aside).count(), 1);
     assert!(found.set_aside[50] && !found.basis.channels.contains(&50));
-    assert!((found.noise[50] / NOISE / 12.0 - 1.0).abs() < 0.2, "{}", found.noise[50]);
+    assert!((found.noise[50] / NOISE / 12.0 - 1.0).abs() < 0.3, "{}", found.noise[50]);
 }
 
 #[test]
