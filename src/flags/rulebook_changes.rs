@@ -92,7 +92,7 @@ impl Campaign {
                 Err(error) => problems.push(format!("{CHANGES}/{name}: {error}")),
             }
         }
-        changes.sort_by(|one: &RulebookChange, next| one.at.cmp(&next.at));
+        changes.sort_by_key(|change: &RulebookChange| change.at);
         (changes, problems)
     }
 }

@@ -234,10 +234,8 @@ fn rule(
         let ruled = verb(record, &screened, &selection.footprints, now)?;
         Ok(format!("{words} {what}: {}", outcome(&ruled)))
     });
-    if decided {
-        if let Some(bench) = app.bench_mut() {
-            bench.selecting.clear();
-        }
+    if decided && let Some(bench) = app.bench_mut() {
+        bench.selecting.clear();
     }
     Vec::new()
 }

@@ -4,6 +4,10 @@ use super::jobs::Answer;
 use super::key::Key;
 
 /// One event for `update`.
+#[expect(
+    clippy::large_enum_variant,
+    reason = "an event lives for one turn of the loop, and few wait at a time"
+)]
 pub enum Event {
     /// The person did something.
     Input(Input),

@@ -4,13 +4,13 @@
 mod condition;
 mod grow;
 mod polygon;
-mod selecting;
+mod kept;
 mod shape;
 mod wanted;
 
 pub use condition::{Found, where_holds};
 pub use grow::connected;
+pub use kept::{Join, Selecting};
 pub use polygon::is_inside;
-pub use selecting::{Join, Selecting};
 pub use shape::Shape;
 pub use wanted::{Says, Wanted};
