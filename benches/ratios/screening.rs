@@ -36,6 +36,10 @@ pub fn section(full: &FullSize) -> Result<Section, Box<dyn std::error::Error>> {
                 Box::new(|| drop(black_box(review.screen_so_far(&rulebook)))),
             ),
             (
+                "cloud tops by CO2 slicing",
+                Box::new(|| drop(black_box(review.layer("co2_cloud_pressure", &Cancel::new())))),
+            ),
+            (
                 "instrument, unusual: components known",
                 Box::new(|| drop(black_box(examined(Some(&bases))))),
             ),

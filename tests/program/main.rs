@@ -6,6 +6,7 @@ mod describe;
 mod export;
 mod hostile;
 mod instrument;
+mod judgements;
 mod layers;
 mod layout;
 mod lending;
