@@ -19,6 +19,9 @@ const SPECTRA: usize = 6000;
 /// And at least as many of each granule.
 const FEWEST_EACH: usize = 100;
 
+/// A band's name, and the rows and noise that each granule gives.
+type BandRows = (String, Vec<(Rows, Vec<f64>)>);
+
 /// What was typed.
 #[derive(Debug, clap::Args)]
 #[command(after_help = "Example:\n  radsieve train spring/*.nc --campaign spring\n\n\
@@ -48,7 +51,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let each = (SPECTRA / files.len().max(1)).max(FEWEST_EACH);
     let mut place: Option<(PathBuf, String)> = None;
     let mut granules = Vec::new();
-    let mut bands: Vec<(String, Vec<(Rows, Vec<f64>)>)> = Vec::new();
+    let mut bands: Vec<BandRows> = Vec::new();
     for file in &files {
         let granule = opening.open(file)?;
         let shape = instrument_shape(&granule);

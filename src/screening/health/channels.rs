@@ -99,8 +99,8 @@ pub fn popping_channels(
     let width = steps.len();
     let step = |at: usize, line: usize| steps[at].get(line).map_or(0.0, |step| step.abs());
     let mut findings = Vec::new();
-    for at in 0..width {
-        let lines = 0..steps[at].len();
+    for (at, own) in steps.iter().enumerate() {
+        let lines = 0..own.len();
         let Some(line) = lines.max_by(|a, b| step(at, *a).total_cmp(&step(at, *b))) else {
             continue;
         };
@@ -109,7 +109,7 @@ pub fn popping_channels(
         let alone =
             beside.filter(|one| *one != at).all(|one| step(one, line) < NEIGHBOURS_SHARE * value);
         if value > limit.value && alone {
-            let stepped = (0..steps[at].len()).filter(|line| step(at, *line) > 0.5 * value).count();
+            let stepped = (0..own.len()).filter(|line| step(at, *line) > 0.5 * value).count();
             let subject = subject(readings, sample.rows.channels[at]);
             let finding =
                 limit.finding(Check::PoppingChannel, subject, Some(readings.number), value);

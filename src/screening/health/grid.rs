@@ -69,7 +69,7 @@ impl ScanGrid {
             (first + detector, first + detector + apart)
         };
         // Each line begins one further, or only some of the detectors would be seen.
-        let taken = |number: &usize| (number % in_line + number / in_line) % step == 0;
+        let taken = |number: &usize| (number % in_line + number / in_line).is_multiple_of(step);
         (0..total).filter(taken).map(pair).collect()
     }
 }

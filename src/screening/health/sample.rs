@@ -213,7 +213,7 @@ impl Raw {
         let kept: Vec<usize> = alive.iter().copied().filter(whole).collect();
         let pair = |row: usize| {
             // Pairs lie one behind the other in the sample.
-            let even = kept[row] % 2 == 0 && kept.get(row + 1) == Some(&(kept[row] + 1));
+            let even = kept[row].is_multiple_of(2) && kept.get(row + 1) == Some(&(kept[row] + 1));
             even.then_some((row, row + 1))
         };
         let channels: Vec<usize> = used.iter().map(|at| self.channels[*at]).collect();

@@ -199,9 +199,9 @@ impl SpectraCheck<'_> {
             value.filter(|value| value.is_finite()).unwrap_or(0.0)
         };
         let mut standing_out = Vec::new();
-        for at in 0..residual.len() {
+        for (at, own) in residual.iter().enumerate() {
             let value = size(Some(at));
-            let others = there * reading.score.powi(2) - residual[at].powi(2);
+            let others = there * reading.score.powi(2) - own.powi(2);
             let rest = (others / (there - 1.0)).max(0.0).sqrt();
             let beside = size(at.checked_sub(1)).max(size(Some(at + 1)));
             if value > self.spike * rest.max(1.0) && beside < NEIGHBOURS_SHARE * value {
