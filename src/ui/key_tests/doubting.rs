@@ -21,7 +21,7 @@ fn selected(trial: &Trial) -> Vec<usize> {
 #[test]
 fn a_key_goes_to_the_most_doubtful_case_and_selects_all_of_it() {
     let (_place, mut trial) = one_granule();
-    assert!(trial.screen(160, 48).contains("2 cases in doubt"));
+    assert!(trial.screen(160, 48).contains("2 cases left"));
     trial.keys("Space");
     assert_eq!((trial.bench().cursor, selected(&trial)), (10, vec![9, 10, 11]));
     assert!(trial.message().starts_with("3 in doubt to 1.00"), "{}", trial.message());

@@ -30,16 +30,16 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         if app.pending() == 0 && record.decisions().iter().any(|one| one.by_person()) {
             facts.push(("kept".to_owned(), Tone::Good));
         }
+        let counts = record.counts();
+        facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
         if bench.tests.screened.is_some() {
             let (left, tone) = match bench.doubt.cases.len() {
-                0 => ("no doubt left".to_owned(), Tone::Good),
-                1 => ("1 case in doubt".to_owned(), Tone::Strong),
-                cases => (format!("{cases} cases in doubt"), Tone::Strong),
+                0 => ("no case left".to_owned(), Tone::Good),
+                1 => ("1 case left".to_owned(), Tone::Strong),
+                cases => (format!("{cases} cases left"), Tone::Strong),
             };
             facts.push((left, tone));
         }
-        let counts = record.counts();
-        facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
         facts.push((format!("{} no flag", counts.no_flag), Tone::Plain));
         facts.push((format!("{} not assessed", counts.not_assessed), Tone::Plain));
         facts.push((record.state().granule.name().to_owned(), Tone::Plain));
