@@ -11,8 +11,9 @@ const INTRODUCTION: &str = "\
 Made from the table in `src/ui/keys.rs`; a test holds the two together. While a prompt or the help
 is open, its own line says which keys it takes; Esc leaves it.
 
-In the Tray the up and down keys choose a granule and Enter opens it. In every other pane the arrows
-move the cursor over the footprints.
+In the Tray the up and down keys choose a granule and Enter opens it. In the Spread
+Left and Right move the threshold finely, Up and Down coarsely; where it shows two layers, the arrows
+move a place on the picture. In every other pane they move the cursor over the footprints.
 
 Keys are changed by the names in the second column, in the table `[keys]` of the campaign's
 `campaign.toml` or of one's own `radsieve/settings.toml` under `XDG_CONFIG_HOME` (else `~/.config`),
