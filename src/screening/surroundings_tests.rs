@@ -96,9 +96,11 @@ fn an_uneven_cluster_is_a_mixed_scene() {
 #[test]
 fn a_warm_coast_is_no_cloud_over_the_sea_beside_it() {
     // Four columns: land at 305 K, then sea at 290 K.
-    let warm_coast =
-        |wavenumber, at: usize| planck(wavenumber, if at % 4 == 0 { 305.0 } else { 290.0 });
-    let land: Vec<f64> = (0..20).map(|at| if at % 4 == 0 { 1.0 } else { 0.0 }).collect();
+    let warm_coast = |wavenumber, at: usize| {
+        planck(wavenumber, if at.is_multiple_of(4) { 305.0 } else { 290.0 })
+    };
+    let land: Vec<f64> =
+        (0..20_usize).map(|at| if at.is_multiple_of(4) { 1.0 } else { 0.0 }).collect();
     let screened = screen(&builtin().unwrap(), &sea(&[5, 4], warm_coast).with("land", &land));
     for test in ["T03 colder than a neighbour", "T04 spread 3x3"] {
         // Footprint 9 has land beside it, and six of the sea.
