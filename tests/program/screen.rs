@@ -172,8 +172,9 @@ fn a_file_without_the_rulebooks_channels_stays_not_assessed() {
     let folder = tempfile::tempdir().unwrap();
     let folder = folder.path();
     plain(folder);
-    // The plain granule warms from detector to detector, which looks like striping.
-    let rules = RULES.replace("bt(900)", "bt(2616)") + "\n[health]\nstriping = 100\n";
+    // The plain granule warms from detector to detector, which looks like striping, without noise.
+    let rules =
+        RULES.replace("bt(900)", "bt(2616)") + "\n[health]\nstriping = 100\nunusual = 1000\n";
     std::fs::write(folder.join("rules.toml"), rules).unwrap();
     let answer = json(folder, &[&SCREEN[..], &["--json"]].concat());
     let file = &answer["files"][0];
