@@ -73,13 +73,13 @@ fn fit(rows: &[Row], families: usize) -> Vec<f64> {
             .zip(&coverages)
             .map(|((voices, _), coverage)| coverage * found[0] + sum(voices, &found[1..]))
             .collect();
-        for place in 0..found.len() {
+        for (place, weight) in found.iter_mut().enumerate() {
             let lever = |row: usize| match place {
                 0 => coverages[row],
                 place => rows[row].0[place - 1].unwrap_or(0.0),
             };
             let (home, pull) = if place == 0 { (0.0, PULL * 0.1) } else { (1.0, PULL) };
-            let (mut slope, mut bend) = (pull * (found[place] - home), pull);
+            let (mut slope, mut bend) = (pull * (*weight - home), pull);
             for (row, sum) in sums.iter().enumerate() {
                 let probability = 1.0 / (1.0 + (-sum).exp());
                 slope += (probability - f64::from(u8::from(rows[row].1))) * lever(row);
@@ -87,9 +87,9 @@ fn fit(rows: &[Row], families: usize) -> Vec<f64> {
             }
             let step = (-slope / bend).clamp(-0.5, 0.5);
             let (least, most) = if place == 0 { START } else { WEIGHTS };
-            let new = (found[place] + step).clamp(least, most);
-            let moved = new - found[place];
-            found[place] = new;
+            let new = (*weight + step).clamp(least, most);
+            let moved = new - *weight;
+            *weight = new;
             for (row, sum) in sums.iter_mut().enumerate() {
                 *sum += moved * lever(row);
             }

@@ -93,7 +93,7 @@ fn of_set(wish: &Wish, rulebook: &Rulebook) -> Result<Vec<Granule>, Mishap> {
     let mut granules = Vec::new();
     for recipe in set.recipes() {
         let file = sets::made(recipe, folder)?;
-        granules.extend(screened(&[file.clone()], rulebook, wish.fit)?);
+        granules.extend(screened(std::slice::from_ref(&file), rulebook, wish.fit)?);
         if wish.keep.is_none() {
             std::fs::remove_file(file)?;
         }

@@ -43,6 +43,7 @@ pub fn now() -> Result<Timestamp, UsageError> {
 }
 
 /// Whether the value of a locale variable names UTF-8 for its characters, in any spelling.
+#[cfg(feature = "terminal")]
 pub fn is_utf8(locale: &str) -> bool {
     let name = locale.to_ascii_lowercase();
     name.contains("utf-8") || name.contains("utf8")
@@ -61,7 +62,7 @@ pub fn write_without_file_locks() {
     }
 }
 
-#[cfg(test)]
+#[cfg(all(test, feature = "terminal"))]
 mod tests {
     #[test]
     fn utf8_is_known_in_its_spellings() {

@@ -6,7 +6,7 @@
 /// Beta(*k* + 1, *n* - *k*); 0 where *k* is 0, and 1 where *k* is *n*. Without trials, all is
 /// possible: 0 to 1.
 ///
-/// Source: [Clopper & Pearson 1934]; the beta form is that of [DLMF] 8.17.
+/// Source: [Clopper & Pearson 1934]; the beta form is that of \[DLMF\] 8.17.
 pub fn clopper_pearson(hits: usize, trials: usize, confidence: f64) -> (f64, f64) {
     let tail = (1.0 - confidence) / 2.0;
     let (hits, trials) = (hits.min(trials) as f64, trials as f64);
@@ -32,7 +32,7 @@ fn quantile(share: f64, a: f64, b: f64) -> f64 {
 
 /// The regularised incomplete beta function I_x(a, b), for positive a and b.
 ///
-/// Source: continued fraction of [DLMF] 8.17.22, which converges fast below the mean
+/// Source: continued fraction of \[DLMF\] 8.17.22, which converges fast below the mean
 /// (a + 1) / (a + b + 2); beyond it by the symmetry I_x(a, b) = 1 - I_{1-x}(b, a).
 fn incomplete_beta(x: f64, a: f64, b: f64) -> f64 {
     if x <= 0.0 {
@@ -49,7 +49,7 @@ fn incomplete_beta(x: f64, a: f64, b: f64) -> f64 {
     }
 }
 
-/// The continued fraction of [DLMF] 8.17.22, by the method of Lentz as modified by Thompson and
+/// The continued fraction of \[DLMF\] 8.17.22, by the method of Lentz as modified by Thompson and
 /// Barnett.
 fn fraction(x: f64, a: f64, b: f64) -> f64 {
     const SMALLEST: f64 = 1e-300;
@@ -75,7 +75,7 @@ fn fraction(x: f64, a: f64, b: f64) -> f64 {
     sum
 }
 
-/// The logarithm of the gamma function, for positive arguments: Stirling's series ([DLMF] 5.11.1)
+/// The logarithm of the gamma function, for positive arguments: Stirling's series (\[DLMF\] 5.11.1)
 /// above 15, where its next term is below 1e-16; below by the recurrence ln Γ(x) = ln Γ(x+1) - ln x.
 fn ln_gamma(x: f64) -> f64 {
     if x < 15.0 {

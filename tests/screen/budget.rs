@@ -39,7 +39,6 @@ fn a_move_of_the_cursor_is_cheap() {
         let used = most(&mut session, &[RIGHT, RIGHT, DOWN, DOWN, RIGHT, DOWN, RIGHT, DOWN]);
         session.expect("Trace footprint (4, 4)");
         assert!((1..budget).contains(&used), "{used} bytes of {budget} with {more:?}");
-        println!("cursor move {more:?}: {used} bytes");
     }
 }
 
@@ -63,5 +62,4 @@ fn a_map_is_recoloured_within_its_budget() {
     session.settle();
     let used = most(&mut session, &["]", "]", "]", "%", "[", "["]);
     assert!((1_000..40_000).contains(&used), "{used} bytes");
-    println!("map recolour: {used} bytes");
 }

@@ -16,7 +16,7 @@ pub enum Join {
         within: Within,
         /// Whether times were compared as well.
         timed: bool,
-        /// For each footprint the place in the lending file, or [`NOWHERE`].
+        /// For each footprint the place in the lending file, or `NOWHERE`.
         numbers: Vec<u32>,
     },
 }
