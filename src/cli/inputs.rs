@@ -184,7 +184,7 @@ impl Inputs {
         // Masks that were exported beside their granules come with every glob. Named alone they
         // stay, and the reader says that they hold no spectra.
         if !files.iter().all(|file| is_mask(file)) {
-            files.retain(|file| !is_mask(file));
+            say_left_out(files.extract_if(.., |file| is_mask(file)).collect());
         }
         let mut seen = HashSet::new();
         files.retain(|file| seen.insert(same_file(file)));
@@ -195,6 +195,15 @@ impl Inputs {
 /// Whether a file goes by the name of a mask of ours.
 fn is_mask(path: &Path) -> bool {
     path.file_name().is_some_and(|name| name.as_bytes().ends_with(b".mask.nc"))
+}
+
+fn say_left_out(masks: Vec<PathBuf>) {
+    let Some(first) = masks.first().and_then(|path| path.file_name()) else { return };
+    let first = clean_text(&first.to_string_lossy());
+    match masks.len() {
+        1 => eprintln!("radsieve: {first} is left out: it goes by the name of a mask"),
+        count => eprintln!("radsieve: {count} files left out by their names as masks: {first}, …"),
+    }
 }
 
 /// Two ways to one file are one file.

@@ -323,7 +323,11 @@ fn a_granule_in_the_out_folder_is_never_overwritten() {
     let other = desk.granule("masks/g.mask.nc", 90.0);
     Campaign::open_or_create(&desk.campaign()).unwrap();
     let before = std::fs::read(&other).unwrap();
-    desk.export(&[], &[&one, &other]).assert().success();
+    // Side by side its name makes it a mask, which is left out with a word.
+    let output = desk.export(&[], &[&one, &other]).assert().success().get_output().clone();
+    let words = text(&output.stderr);
+    assert!(words.contains("g.mask.nc") && words.contains("left out"), "{words}");
+    desk.export(&[], &[&other]).assert().success();
     assert!(std::fs::read(&other).unwrap() == before);
     assert_eq!(folder(&desk.path("masks")).len(), 4);
 }
