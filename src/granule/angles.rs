@@ -29,8 +29,24 @@ const MOST_CHECKED: usize = 2000;
 pub fn complete(geolocation: &mut Geolocation, grid: &FootprintGrid, problems: &mut Vec<Problem>) {
     check_sun(geolocation, problems);
     add_sun(geolocation, problems);
+    take_sign_from_view(geolocation, problems);
     check_view(geolocation, grid, problems);
     add_view(geolocation, grid, problems);
+}
+
+/// A view zenith angle with a sign tells the side of the track by it. Its size is taken; which way an
+/// azimuth beside it points on the negative side is not known, so it is worked out anew.
+fn take_sign_from_view(geolocation: &mut Geolocation, problems: &mut Vec<Problem>) {
+    let Some(zenith) = &mut geolocation.view_zenith else { return };
+    if !zenith.iter().any(|angle| *angle < 0.0) {
+        return;
+    }
+    zenith.iter_mut().for_each(|angle| *angle = angle.abs());
+    geolocation.view_azimuth = None;
+    geolocation.sources.retain(|source| source.field != "view_azimuth");
+    let what =
+        "`view_zenith` has a sign: its size is taken, and `view_azimuth` comes from the scan line";
+    problems.push(Problem::guess(what, "", "give both without signs"));
 }
 
 /// Every so many of `count`, so that few enough are checked.

@@ -64,20 +64,23 @@ pub fn run(rulebook: &Rulebook, names: &dyn Names) -> (Vec<Option<usize>>, Vec<T
 
 /// Each footprint takes the first surface that holds; one that can't be decided does not hold.
 fn surfaces(rulebook: &Rulebook, layers: &Layers<'_>, footprints: usize) -> Vec<Option<usize>> {
-    let holds: Vec<Option<&[f64]>> = rulebook
+    // What the file allows, in the order of the rulebook; nothing where a surface holds anywhere.
+    let holds: Vec<Option<Vec<&[f64]>>> = rulebook
         .surfaces
         .iter()
         .map(|surface| {
-            if surface.places.is_empty() {
-                return None;
-            }
-            let allowed = surface.places.iter().find_map(|place| found(layers, place).ok());
-            Some(allowed.map_or(&[][..], |layer| &layer.values))
+            let allowed = surface.places.iter().filter_map(|place| found(layers, place).ok());
+            let allowed = allowed.map(|layer| &layer.values[..]);
+            (!surface.places.is_empty()).then(|| allowed.collect())
         })
         .collect();
-    let holds_at = |holds: &Option<&[f64]>, footprint: usize| match holds {
+    // At each footprint the first that is not missing there.
+    let holds_at = |holds: &Option<Vec<&[f64]>>, footprint: usize| match holds {
         None => true,
-        Some(values) => values.get(footprint).is_some_and(|value| is_true(*value)),
+        Some(allowed) => {
+            let mut values = allowed.iter().map(|values| values[footprint]);
+            values.find(|value| !value.is_nan()).is_some_and(is_true)
+        }
     };
     (0..footprints).map(|at| holds.iter().position(|holds| holds_at(holds, at))).collect()
 }

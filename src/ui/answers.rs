@@ -272,6 +272,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
         return Vec::new();
     };
     bench.awaited.layer = 0;
+    let mut jobs = Vec::new();
     match found {
         Ok(layer) => {
             if bench.layer.text != bench.wanted {
@@ -284,7 +285,7 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
             bench.layer.bands = layer.bands;
             bench.layer.fill(layer.values, layer.unit.label(), difference, layer.notes);
             tracing::mark_used(bench);
-            return strip::refresh(app);
+            jobs.extend(strip::refresh(app));
         }
         Err(why) if bench.layer.text == bench.wanted => bench.layer.problem = Some(why),
         Err(why) => {
@@ -293,10 +294,10 @@ fn layer(app: &mut App, request: u64, found: Result<Layer, String>) -> Vec<Job> 
             app.warn(why);
         }
     }
-    match app.bench_mut() {
-        Some(bench) if bench.filling.of_layer => std::mem::take(&mut bench.behind_first_picture),
-        _ => Vec::new(),
+    if let Some(bench) = app.bench_mut().filter(|bench| bench.filling.of_layer) {
+        jobs.extend(std::mem::take(&mut bench.behind_first_picture));
     }
+    jobs
 }
 
 fn indices(app: &mut App, request: u64, found: Vec<Result<Layer, String>>) -> Vec<Job> {

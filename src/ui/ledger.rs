@@ -73,9 +73,13 @@ pub fn take_back(app: &mut App) -> Vec<Job> {
         return Vec::new();
     };
     let id = decision.id.clone();
-    deciding::change(app, |record, now| {
+    let jobs = deciding::change(app, |record, now| {
         let (taken, decision) = record.turn(&id, now)?;
         let verb = if taken { "taken back" } else { "put back" };
         Ok(format!("{verb}: {} by {}", words(&decision), decision.speaker()))
-    })
+    });
+    // The newest stands first: the cursor stays on the decision that it was on.
+    let added = rows_on_show(app).len().saturating_sub(rows.len());
+    app.ledger.cursor = cursor + added;
+    jobs
 }

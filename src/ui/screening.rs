@@ -10,6 +10,7 @@ use super::colour::Tone;
 use super::jobs::Job;
 use super::keys::Action;
 use super::looking;
+use super::spreading::{self, Source};
 use super::{deciding, doubting};
 
 /// Runs the tests over the granule on the table; the newest request wins.
@@ -33,6 +34,13 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
         return Vec::new();
     };
     bench.awaited.screen = 0;
+    // A threshold in hand belongs to a test of the run before, and may be counted from its limit.
+    let in_hand = bench.spread_test();
+    let in_hand = in_hand.map(|(before, place, _)| before.rulebook.tests[place].name.clone());
+    if matches!(bench.spread.source, Source::Test(_)) {
+        bench.forget_spread();
+        bench.spread.source = Source::Layer;
+    }
     match found {
         Ok(screened) => {
             bench.suggest_judgements(&screened);
@@ -44,6 +52,9 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
             // A layer may be made of what the tests say.
             let mut jobs = looking::refresh_layer(app);
             jobs.extend(doubting::tests_have_run(app));
+            if let Some(test) = in_hand {
+                jobs.extend(take_again(app, &test));
+            }
             return jobs;
         }
         Err(why) => {
@@ -53,6 +64,15 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
         }
     }
     Vec::new()
+}
+
+/// Takes the test that was in hand before the tests ran in hand again, with nothing tried on it.
+fn take_again(app: &mut App, test: &str) -> Vec<Job> {
+    let (focus, message) = (app.focus(), app.message.clone());
+    let jobs = spreading::take_test(app, test);
+    app.panes.focus_on(focus);
+    app.message = message;
+    jobs
 }
 
 /// Waits for the tests no longer; false where none are running.

@@ -13,6 +13,7 @@ use super::looking::{self, no_granule};
 use super::moving;
 use super::overlay::Selection;
 use super::selecting::Join;
+use super::spreading::Source;
 
 /// Footprints drawn with flag and without, unless another number is asked for. With none wrong among
 /// so many, at most one in six is with 95 % confidence.
@@ -51,6 +52,12 @@ pub fn begin(app: &mut App, each: usize) -> Vec<Job> {
     }
     bench.spot = Some(Spot { sample, judged: Vec::new() });
     bench.selecting.clear();
+    // What is on the Spread may show what the tests say.
+    bench.forget_spread();
+    bench.spread.source = Source::Layer;
+    bench.spread.against = None;
+    bench.awaited.against = 0;
+    bench.awaited.alike = 0;
     let mut jobs = looking::hide_judgements(app);
     jobs.extend(show(app));
     jobs
@@ -59,6 +66,9 @@ pub fn begin(app: &mut App, each: usize) -> Vec<Job> {
 /// Takes a key while a spot check is under way; `None` for keys that only look.
 pub fn press(app: &mut App, key: Key) -> Option<Vec<Job>> {
     app.bench().filter(|bench| bench.is_blind())?;
+    if key.control || key.alt {
+        return refused(app, key);
+    }
     let said = match key.code {
         Code::Char('y') => Judgement::Fit,
         Code::Char('n') => Judgement::Unfit,
@@ -73,13 +83,16 @@ pub fn press(app: &mut App, key: Key) -> Option<Vec<Job>> {
 /// Whatever would decide something, show a verdict or leave the granule waits.
 fn refused(app: &mut App, key: Key) -> Option<Vec<Job>> {
     let action = app.keymap.action_of(key)?;
-    let waits = matches!(keys::group_of(action), Some(Group::Deciding | Group::Selecting))
-        || matches!(
-            action,
-            Action::NextGranule | Action::PreviousGranule | Action::NextUnsigned | Action::Open
-        )
-        || matches!(action, Action::Signs | Action::OtherLayer | Action::Command)
-        || matches!(action, Action::NextLayer | Action::PreviousLayer | Action::AskLayer);
+    let waits = matches!(
+        keys::group_of(action),
+        Some(Group::Deciding | Group::Selecting | Group::Thresholds)
+    ) || matches!(
+        action,
+        Action::NextGranule | Action::PreviousGranule | Action::NextUnsigned | Action::Open
+    ) || matches!(action, Action::Signs | Action::OtherLayer | Action::Command)
+        || matches!(action, Action::NextLayer | Action::PreviousLayer | Action::AskLayer)
+        || matches!(action, Action::AskChannel | Action::AskAgainst)
+        || matches!(action, Action::FlagChannels | Action::WithdrawChannels);
     if !waits {
         return None;
     }
@@ -88,6 +101,14 @@ fn refused(app: &mut App, key: Key) -> Option<Vec<Job>> {
 }
 
 fn judge(app: &mut App, said: Judgement) -> Vec<Job> {
+    let asked = app.bench().and_then(|bench| {
+        let spot = bench.spot.as_ref()?;
+        Some(spot.sample.footprint(spot.judged.len())? == bench.cursor)
+    });
+    if asked == Some(false) {
+        // A look around led elsewhere: back first, for what is judged is what is shown.
+        return show(app);
+    }
     let Some(spot) = app.bench_mut().and_then(|bench| bench.spot.as_mut()) else {
         return Vec::new();
     };

@@ -1,6 +1,7 @@
 //! What an event does to the state, and which jobs follow from it.
 
 use super::app::{App, Table};
+use super::bench::Bench;
 use super::event::{Event, Input, Mouse};
 use super::jobs::Job;
 use super::key::{Code, Key};
@@ -176,24 +177,30 @@ fn next_pane(app: &App, forward: bool) -> Pane {
 /// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, running tests, then
 /// the message.
 fn cancel(app: &mut App) -> Vec<Job> {
-    let let_go =
-        |bench: &mut super::bench::Bench| bench.selecting.let_go() || bench.drop_channel_pick();
-    let dropped = picking::give_up(app) || app.bench_mut().is_some_and(let_go);
     if app.leaving {
         app.leaving = false;
         app.say("stays");
-    } else if matches!(app.table, Table::Opening { .. }) {
+        return Vec::new();
+    }
+    let let_go = |bench: &mut Bench| bench.selecting.let_go() || bench.drop_channel_pick();
+    let dropped = picking::give_up(app) || app.bench_mut().is_some_and(let_go);
+    if matches!(app.table, Table::Opening { .. }) {
         turning::give_up_opening(app);
     } else if !dropped && app.panes.is_zoomed() {
         app.panes.zoom(false);
-    } else if !dropped && !screening::give_up(app) && !strip::give_up(app) {
+    } else if !dropped
+        && !spreading::give_up(app)
+        && !screening::give_up(app)
+        && !strip::give_up(app)
+    {
         app.say("");
     }
     Vec::new()
 }
 
 fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
-    if !app.mouse || !matches!(app.overlay, Overlay::None) {
+    let blind = app.bench().is_some_and(Bench::is_blind);
+    if !app.mouse || blind || !matches!(app.overlay, Overlay::None) {
         return Vec::new();
     }
     moving::click(app, mouse)

@@ -79,6 +79,8 @@ impl Join {
                     let place = tree.nearest(centre, radius, &|_| true)?;
                     u32::try_from(step * count + place as usize).ok()
                 }
+                // Which of several steps is meant is not known.
+                (Times::Steps(steps), None) if steps.len() > 1 => None,
                 _ => tree.nearest(centre, radius, &|_| true),
             }
         };

@@ -94,8 +94,14 @@ impl Air {
             _ if season > 0.0 => Standard::SubarcticSummer,
             _ => Standard::SubarcticWinter,
         };
-        let compute = || Air::of(&Atmosphere::new(standard, &Changes::default()));
-        COMPUTED[standard as usize].get_or_init(compute)
+        // Computed before the cell is locked: the work is shared among threads, and one that waits
+        // for its share may take up another footprint, which asks for the same cell.
+        let cell = &COMPUTED[standard as usize];
+        if let Some(air) = cell.get() {
+            return air;
+        }
+        let air = Air::of(&Atmosphere::new(standard, &Changes::default()));
+        cell.get_or_init(|| air)
     }
 
     /// What is seen under a view zenith angle, degrees.

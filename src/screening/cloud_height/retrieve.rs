@@ -61,7 +61,11 @@ impl CloudHeight {
 
     fn air(&self, latitude: f64, season: f64) -> &Air {
         match &self.profile {
-            Some(profile) => self.own.get_or_init(|| Air::of(&profile.air)),
+            // As for the standard atmospheres, never computed while the cell is locked.
+            Some(profile) => self.own.get().unwrap_or_else(|| {
+                let air = Air::of(&profile.air);
+                self.own.get_or_init(|| air)
+            }),
             None => Air::nearest(latitude, season),
         }
     }

@@ -145,7 +145,10 @@ impl Raw {
         let (mut dead, mut findings) = (Vec::new(), Vec::new());
         for detector in 0..grid.detectors {
             let of_channels = ratios.iter().map(|ratios| ratios[detector]);
-            let ratio = median(&mut of_channels.filter(|one| one.is_finite()).collect::<Vec<_>>());
+            let mut known: Vec<f64> = of_channels.filter(|one| one.is_finite()).collect();
+            // Without any value where others have some it is as dead as one without a signal.
+            let silent = known.is_empty() && ratios.iter().flatten().any(|one| one.is_finite());
+            let ratio = if silent { 0.0 } else { median(&mut known) };
             if ratio < limit.value {
                 dead.push(detector);
                 let (subject, band) = (Subject::Detector(detector), Some(readings.number));

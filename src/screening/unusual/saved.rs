@@ -2,7 +2,7 @@
 
 use super::basis::Basis;
 use super::fit::{Rows, fit};
-use crate::granule::Granule;
+use crate::granule::{Apodisation, Granule};
 use crate::spectral::median;
 
 /// The components of all bands of an instrument.
@@ -26,13 +26,17 @@ impl SavedBases {
 }
 
 /// Names the bands of an instrument: how many channels each has, and the beginning of a hash of their
-/// names and wavenumbers (to 1e-4 cm-1), as in `717+869+637_1a2b3c4d`.
+/// names, wavenumbers (to 1e-4 cm-1) and whether values are apodised by Hamming's function, as in `717+869+637_1a2b3c4d`.
 pub fn instrument_shape(granule: &Granule) -> String {
     let bands = granule.bands();
     let counts: Vec<String> = bands.iter().map(|band| band.channels().to_string()).collect();
     let mut hash = blake3::Hasher::new();
     for band in bands {
         hash.update(band.name.as_bytes());
+        // Apodised in the file or on request, the spectra are the same.
+        let hamming =
+            matches!(band.apodisation, Apodisation::Hamming | Apodisation::HammingApplied);
+        hash.update(&[u8::from(hamming)]);
         for wavenumber in band.axis.wavenumbers() {
             hash.update(&((wavenumber * 1e4).round() as i64).to_le_bytes());
         }

@@ -242,6 +242,13 @@ pub fn ask_to_adopt(app: &mut App) -> Vec<Job> {
         app.say(format!("no test is in hand; {next} takes one"));
         return Vec::new();
     }
+    if bench.spread_test().is_some_and(|(_, _, way)| way.sense != bench.spread_sense()) {
+        let turn = app.keymap.hint(Action::TurnSide);
+        app.warn(format!(
+            "the test looks at the other side of its threshold; {turn} turns it back"
+        ));
+        return Vec::new();
+    }
     app.overlay = Overlay::Line(LinePrompt::new(Purpose::Adopt, ""));
     Vec::new()
 }

@@ -8,6 +8,7 @@ use crate::review::Measure;
 use crate::screening::proposed_threshold;
 use crate::system::Cancel;
 use crate::ui::app::App;
+use crate::ui::bench::Bench;
 use crate::ui::jobs::Job;
 use crate::ui::keys::Action;
 use crate::ui::looking::no_granule;
@@ -26,6 +27,16 @@ pub fn ask(app: &mut App, measure: Measure) -> Vec<Job> {
     let (review, footprint) = (Arc::clone(&bench.review), bench.cursor);
     app.say("comparing spectra…");
     vec![Job::Alike { request, review, footprint, measure, cancel: Cancel::new() }]
+}
+
+/// Waits for no comparison and no second layer any longer; false where none is awaited.
+pub fn give_up(app: &mut App) -> bool {
+    let awaits = |bench: &&mut Bench| bench.awaited.alike != 0 || bench.awaited.against != 0;
+    let Some(bench) = app.bench_mut().filter(awaits) else { return false };
+    bench.awaited.alike = 0;
+    bench.awaited.against = 0;
+    app.say("given up");
+    true
 }
 
 /// Shows the distances on the Spread, with a threshold at the valley between alike and other ones.
