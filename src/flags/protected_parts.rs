@@ -1,4 +1,4 @@
-//! What a person confirmed stays, even when the test that said it takes it back.
+//! What a person confirmed or withdrew stays decided, even when the test that said it takes it back.
 
 use std::collections::HashMap;
 
@@ -18,6 +18,8 @@ pub(super) fn protected_parts(
     }
     // Per footprint, one more than the position of its latest assessment so far.
     let mut assessed = vec![0usize; footprints];
+    // The same for withdrawals of a flag: with the flag, what took it off stands, too.
+    let mut withdrawn: HashMap<&str, Vec<usize>> = HashMap::new();
     for (at, decision) in ordered.standing_ones() {
         match &decision.act {
             Act::Assess { footprints: set }
@@ -27,11 +29,20 @@ pub(super) fn protected_parts(
             {
                 set.clipped(footprints).iter().for_each(|place| assessed[place] = at + 1);
             }
+            Act::Withdraw { flag, footprints: set, bands: None } if decision.by_person() => {
+                let latest = withdrawn.entry(flag).or_insert_with(|| vec![0; footprints]);
+                set.clipped(footprints).iter().for_each(|place| latest[place] = at + 1);
+            }
             _ => {
                 for taken_back in revoked.remove(&at).unwrap_or_default() {
-                    let set = ordered.decisions[taken_back].act.footprints();
+                    let act = &ordered.decisions[taken_back].act;
+                    let withdrawn = act.flag().and_then(|flag| withdrawn.get(flag));
+                    let set = act.footprints();
                     let set = set.map(|set| set.clipped(footprints)).unwrap_or_default();
-                    let kept = set.iter().filter(|&place| assessed[place] > taken_back);
+                    let kept = set.iter().filter(|&place| {
+                        let latest = withdrawn.map_or(0, |latest| latest[place]);
+                        assessed[place].max(latest) > taken_back
+                    });
                     let part: FootprintSet = kept.collect();
                     if !part.is_empty() {
                         parts.insert(taken_back, part);

@@ -28,6 +28,8 @@ pub struct Producer {
     pub left_out: Vec<bool>,
     /// What the campaign's map does not cover or cannot have, in words that are safe to show.
     pub problems: Vec<String>,
+    /// Variables of the map that could not be read: what they said before stays.
+    pub unread: Vec<String>,
     /// Meanings that are not to be shown: variable and word.
     ignored: Vec<(String, String)>,
 }
@@ -44,14 +46,17 @@ impl Producer {
                 producer.problems.push(format!(
                     "the campaign's quality map names `{shown}`, which the granule does not have"
                 ));
+                producer.unread.push(shown);
                 continue;
             };
             covered.push(variable.name.clone());
             match granule.read_variable(&variable.name) {
                 Ok(values) => producer.take(variable, &values, meanings),
-                Err(error) => producer
-                    .problems
-                    .push(format!("the producer's `{shown}` cannot be read: {error}")),
+                Err(error) => {
+                    let problem = format!("the producer's `{shown}` cannot be read: {error}");
+                    producer.problems.push(problem);
+                    producer.unread.push(clean_text(&variable.name));
+                }
             }
         }
         let others = granule.variables().iter().filter(|variable| {

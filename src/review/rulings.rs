@@ -3,6 +3,7 @@
 use jiff::Timestamp;
 
 use super::rulebook_of::name_of;
+use super::tests_decide::flagged_by_tests;
 use super::{Record, Refusal};
 use crate::flags::{Act, DOUBTFUL, FlagAt, FootprintSet, ReviewState, Ruling};
 use crate::screening::Screened;
@@ -45,8 +46,9 @@ impl Record {
         let judged = self.open_ones(screened, footprints)?;
         let given = suggested(screened, &judged);
         let stale = screened.flags.iter().map(|flag| {
-            let stands = self.carrying(&flag.flag, &judged);
-            let footprints = stands.iter().filter(|at| !flag.is_set(*at)).collect();
+            // What the spectra as a set say is suggested, too.
+            let said = flagged_by_tests(screened, |name| name == flag.flag);
+            let footprints = self.carrying(&flag.flag, &judged).minus(&said);
             FlagAt { flag: flag.flag.clone(), footprints }
         });
         let withdrawn = stale.collect();

@@ -5,7 +5,8 @@ use rand::seq::SliceRandom;
 use rand_chacha::ChaCha8Rng;
 
 use super::rulebook_of::name_of;
-use crate::flags::{FlagKind, FootprintSet, SpotCheck, Stratum, Vocabulary};
+use super::tests_decide::flagged_by_tests;
+use crate::flags::{FootprintSet, SpotCheck, Stratum, Vocabulary};
 use crate::screening::Screened;
 
 /// Footprints drawn to be judged, in an order that tells nothing about them.
@@ -45,9 +46,10 @@ pub fn draw_sample(
     seed: u64,
 ) -> SpotSample {
     let plain = |at: &usize| screened.assessed[*at] && !screened.is_doubtful(*at) && !settled(*at);
-    let (flagged, free): (Vec<usize>, Vec<usize>) = (0..screened.footprints())
-        .filter(plain)
-        .partition(|at| is_kept_away(screened, vocabulary, *at));
+    let excludes = |flag: &str| vocabulary.by_name(flag).is_some_and(|kind| kind.excludes);
+    let kept_away = flagged_by_tests(screened, excludes);
+    let (flagged, free): (Vec<usize>, Vec<usize>) =
+        (0..screened.footprints()).filter(plain).partition(|at| kept_away.contains(*at));
     let mut random = ChaCha8Rng::seed_from_u64(seed);
     let plain = [free.len(), flagged.len()];
     let mut drawn = Vec::new();
@@ -58,14 +60,6 @@ pub fn draw_sample(
     drawn.shuffle(&mut random);
     let rulebook = name_of(&screened.rulebook);
     SpotSample { seed, rulebook, plain, drawn }
-}
-
-/// Whether the tests set a flag that keeps a footprint from the retrieval.
-fn is_kept_away(screened: &Screened, vocabulary: &Vocabulary, footprint: usize) -> bool {
-    screened.flags.iter().any(|flag| {
-        let kind: Option<&FlagKind> = vocabulary.by_name(&flag.flag);
-        flag.is_set(footprint) && kind.is_some_and(|kind| kind.excludes)
-    })
 }
 
 impl SpotSample {

@@ -63,6 +63,15 @@ pub fn test_acts(screened: &Screened) -> Vec<(Act, Option<String>)> {
     acts
 }
 
+/// Where the tests set a flag of which `counts` is true, by the rulebook or by the spectra as a set, in
+/// no band only.
+pub fn flagged_by_tests(screened: &Screened, counts: impl Fn(&str) -> bool) -> FootprintSet {
+    test_acts(screened).into_iter().fold(FootprintSet::empty(), |all, (act, _)| match act {
+        Act::Flag { flag, footprints, bands: None } if counts(&flag) => all.union(&footprints),
+        _ => all,
+    })
+}
+
 /// An act without the footprints that were left out; nothing where none are left.
 fn spared(act: Act, screened: &Screened) -> Option<Act> {
     let Act::Flag { flag, footprints, bands } = act else { return Some(act) };
@@ -111,8 +120,13 @@ impl Record {
         let flags: Vec<&str> = producer.rejections.iter().map(|one| one.flag.as_str()).collect();
         self.knows(&flags)?;
         let mut acts: BTreeMap<String, Vec<(Act, Option<String>)>> = BTreeMap::new();
-        // A variable that rejects nobody any more takes back what it said.
-        for name in self.producers() {
+        // A variable that rejects nobody any more takes back what it said; not one that could not be
+        // read.
+        let is_unread = |name: &String| {
+            let variable = name.strip_prefix(PRODUCER);
+            variable.is_some_and(|variable| producer.unread.iter().any(|one| one == variable))
+        };
+        for name in self.producers().into_iter().filter(|name| !is_unread(name)) {
             acts.entry(name).or_default();
         }
         for one in &producer.rejections {

@@ -27,7 +27,11 @@ impl Tray {
             .filter(|check| check.rulebook == rulebook)
             .collect();
         let spot = [false, true].map(|flagged| pooled(checks.iter().copied(), flagged));
-        let unchecked = spot_reason(&spot, limits);
+        let occurs = [false, true].map(|flagged| {
+            let mut strata = checks.iter().flat_map(|check| &check.strata);
+            strata.any(|stratum| stratum.flagged == flagged && stratum.plain > 0)
+        });
+        let unchecked = spot_reason(&spot, occurs, limits);
         let mut offer = Offer { within: Vec::new(), beyond: BTreeMap::new(), spot };
         for (number, entry) in self.entries().iter().enumerate() {
             let standing = entry.standing.as_ref().filter(|_| entry.error.is_none());
@@ -50,13 +54,15 @@ fn is_done(standing: &Standing) -> bool {
     matches!(standing.state, GranuleState::SignedOff | GranuleState::SetAside)
 }
 
-fn spot_reason(spot: &[ErrorRate; 2], limits: &SignOffLimits) -> Option<String> {
+fn spot_reason(spot: &[ErrorRate; 2], occurs: [bool; 2], limits: &SignOffLimits) -> Option<String> {
     let [free, flagged] = spot;
     if free.judged == 0 && flagged.judged == 0 {
         return Some("no spot check of this rulebook".to_owned());
     }
-    // A kind that was never drawn does not occur among the plain ones.
-    let beyond = spot.iter().any(|rate| rate.judged > 0 && rate.high > limits.spot_error);
+    // Of a kind that occurs and of which nobody could tell anything, all may be wrong.
+    let mut rates = spot.iter().zip(occurs);
+    let beyond =
+        rates.any(|(rate, occurs)| (occurs || rate.judged > 0) && rate.high > limits.spot_error);
     beyond.then(|| "the spot checks leave too large an error possible".to_owned())
 }
 
