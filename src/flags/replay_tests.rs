@@ -153,6 +153,18 @@ fn after_a_person_assessed_no_later_test_changes_anything() {
 }
 
 #[test]
+fn a_withdrawal_stays_a_decision_when_the_test_takes_back_what_was_withdrawn() {
+    let mut story = Story::default();
+    let by_test = story.test(flag("cloudy", &[0, 1]));
+    story.anna(withdraw("cloudy", &[0]));
+    story.test(revoke(&by_test));
+    let state = story.state();
+    assert_eq!(state.footprint_flags[..2], [0, 0]);
+    use ReviewState::{DecidedByPerson, NotAssessed};
+    assert_eq!(state.review[..2], [DecidedByPerson, NotAssessed]);
+}
+
+#[test]
 fn a_test_takes_back_its_own_and_never_a_persons() {
     let mut story = Story::default();
     let by_test = story.test(flag("cloudy", &[0]));

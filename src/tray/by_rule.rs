@@ -90,3 +90,22 @@ pub fn reason(standing: &Standing, limits: &SignOffLimits, rulebook: &str) -> Op
     }
     (counts.flagged_channels > limits.flagged_channels).then(|| "too many bad channels".to_owned())
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_kind_that_occurs_and_was_not_judged_may_be_all_wrong() {
+        let limits = SignOffLimits { spot_error: 0.2, ..SignOffLimits::default() };
+        // None wrong of 40: at most 8.8 % at 97.5 % confidence, 1 - 0.025^(1/40)
+        // [Clopper & Pearson 1934].
+        let judged = ErrorRate::of(0, 40);
+        let nothing = ErrorRate::of(0, 0);
+        let both = [true, true];
+        assert_eq!(spot_reason(&[judged, judged], both, &limits), None);
+        assert!(spot_reason(&[nothing, judged], both, &limits).is_some());
+        assert_eq!(spot_reason(&[nothing, judged], [false, true], &limits), None);
+        assert!(spot_reason(&[nothing, nothing], [false, false], &limits).is_some());
+    }
+}
