@@ -1,8 +1,7 @@
 //! Ratios measured in one run: each fast path against the plain one that it replaces.
 //!
-//! `cargo bench --profile dev` (which is optimised here, and shares what the tests have built)
-//! prints one table per section. Times of one machine say little about another;
-//! ratios of one run do. To add a section, write a module with a function that returns a
+//! `cargo bench --bench ratios` prints one table per section. Times of one machine say little about
+//! another; ratios of one run do. To add a section, write a module with a function that returns a
 //! [`table::Section`] and name it in `main`.
 #![allow(clippy::print_stdout)]
 
