@@ -46,6 +46,7 @@ fn decisions(acts: Vec<Act>) -> Vec<Decision> {
         origin: Origin::Person,
         act,
         why: None,
+        step: None,
     };
     numbered.map(decision).collect()
 }

@@ -215,6 +215,8 @@ pub struct Decision {
     pub act: Act,
     /// Why, in the person's words or the test's.
     pub why: Option<String>,
+    /// The step that it is a part of, where one step of a person decides about several granules.
+    pub step: Option<String>,
 }
 
 impl Decision {

@@ -1,6 +1,6 @@
 //! Which decisions stand, and what undo and redo would name.
 
-use std::collections::HashMap;
+use std::collections::{BTreeSet, HashMap};
 
 use jiff::Timestamp;
 
@@ -156,6 +156,22 @@ pub fn own_times(decisions: &[Decision], person: &str) -> OwnTimes {
         redo: redo_target(decisions, person).and_then(at),
         decided: new.map(|one| one.at).max(),
     }
+}
+
+/// The steps over several granules that a person's decisions about this one are parts of.
+pub fn own_steps(decisions: &[Decision], person: &str) -> BTreeSet<String> {
+    let own_ones = decisions.iter().filter(|one| own(one, person));
+    own_ones.filter_map(|decision| decision.step.clone()).collect()
+}
+
+/// What a person decided in a step, undo and redo apart, and whether it stands.
+pub fn of_step(decisions: &[Decision], person: &str, step: &str) -> Vec<(DecisionId, bool)> {
+    let standing = standing(decisions);
+    let all = decisions.iter().zip(standing);
+    let parts = all.filter(|(one, _)| {
+        own(one, person) && !is_revocation(one) && one.step.as_deref() == Some(step)
+    });
+    parts.map(|(one, stands)| (one.id.clone(), stands)).collect()
 }
 
 fn is_revocation(decision: &Decision) -> bool {

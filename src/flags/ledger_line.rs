@@ -64,6 +64,8 @@ struct WrittenLine<'a> {
     act: &'a Act,
     #[serde(skip_serializing_if = "Option::is_none")]
     why: Option<&'a str>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    step: Option<&'a str>,
 }
 
 /// One line, with its line break.
@@ -85,6 +87,7 @@ pub(super) fn write_decision(decision: &Decision) -> Result<Vec<u8>, serde_json:
         },
         act: &decision.act,
         why: decision.why.as_deref(),
+        step: decision.step.as_deref(),
     })
 }
 
@@ -96,6 +99,7 @@ struct ReadLine {
     test: Option<String>,
     act: String,
     why: Option<String>,
+    step: Option<String>,
     #[serde(flatten)]
     rest: Map<String, Value>,
 }
@@ -136,6 +140,7 @@ pub(super) fn read_decision(line: &[u8], header: &Header) -> Result<Decision, St
         origin: read.test.map_or(Origin::Person, Origin::Test),
         act,
         why: read.why,
+        step: read.step,
     })
 }
 

@@ -58,6 +58,7 @@ pub struct LedgerWriter {
     events: Receiver<LedgerEvent>,
     pending: Vec<DecisionId>,
     last_failure: Option<String>,
+    step: Option<String>,
 }
 
 impl LedgerWriter {
@@ -109,6 +110,7 @@ impl LedgerWriter {
             events,
             pending: Vec::new(),
             last_failure: None,
+            step: None,
         })
     }
 
@@ -116,6 +118,11 @@ impl LedgerWriter {
     /// own come after them in the order of all, whatever the clocks of other hosts say.
     pub fn saw(&mut self, decisions: &[Decision]) {
         self.latest = self.latest.max(decisions.iter().map(|decision| decision.at).max());
+    }
+
+    /// What is decided from now on is a part of this step, or of none.
+    pub fn in_step(&mut self, step: Option<String>) {
+        self.step = step;
     }
 
     /// Decides: gives the decision its name and time, and hands it to the thread. It is pending
@@ -138,7 +145,8 @@ impl LedgerWriter {
         let id = DecisionId { writer: self.name.clone(), sequence: self.sequence };
         let clock = (at != now).then_some(now);
         let person = self.person.clone();
-        let decision = Decision { id, at, clock, person, origin, act, why };
+        let step = self.step.clone();
+        let decision = Decision { id, at, clock, person, origin, act, why, step };
         self.pending.push(decision.id.clone());
         // The thread ends only when told to, and then `close` has taken the writer away.
         let _ = self.orders.send(Order::Keep(Box::new(decision.clone())));

@@ -45,7 +45,8 @@ pub use clopper_pearson::clopper_pearson;
 pub use decision::{Act, ChannelName, Decision, DecisionId, FlagAt, Origin, PRODUCER, Ruling};
 pub use footprint_set::FootprintSet;
 pub use history::{
-    OwnTimes, SCREENED_BY, own_times, redo_target, screened_by, spot_checks, standing, undo_target,
+    OwnTimes, SCREENED_BY, of_step, own_steps, own_times, redo_target, screened_by, spot_checks,
+    standing, undo_target,
 };
 pub use key_settings::KeySetting;
 pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};

@@ -26,6 +26,7 @@ impl Story {
             origin,
             act,
             why: None,
+            step: None,
         });
         id
     }

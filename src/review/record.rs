@@ -79,6 +79,11 @@ impl Record {
         }
     }
 
+    /// What is decided from now on is a part of this step, or of none.
+    pub(super) fn set_step(&mut self, step: Option<String>) {
+        self.writer.in_step(step);
+    }
+
     /// Decides as a test, by its name; the caller folds when all is said.
     pub(super) fn decide_as_test(
         &mut self,

@@ -8,7 +8,8 @@ use crate::export::granule_identity;
 use crate::flags::{GranuleIdentity, QualityMap};
 use crate::granule::{Channel, Cube, Granule, GranuleError, Opening};
 use crate::layers::{
-    Expression, GranuleNames, Judgements, Kept, Layer, Mistake, channels_needed, evaluate_all,
+    Expression, GranuleNames, Judgements, Kept, Layer, LayerError, Mistake, channels_needed,
+    evaluate_all,
 };
 use crate::screening::health::examine;
 use crate::screening::unusual::SavedBases;
@@ -102,8 +103,18 @@ impl Review {
     /// # Errors
     /// The file can't be read, or `cancel` was asked for.
     pub fn screen(&self, rulebook: &Rulebook, cancel: &Cancel) -> Result<Screened, GranuleError> {
-        self.granule.fill(cancel, &mut |_| {})?;
+        // The tests count as much as the examination, which looks at every spectrum of every band.
+        let steps = self.granule.bands().len() * self.granule.footprints().count();
+        cancel.expect(2 * steps);
+        let (half, mut told) = (steps / 2, 0);
+        self.granule.fill(cancel, &mut |progress| {
+            let done = half * progress.done / progress.total.max(1);
+            cancel.did(done.saturating_sub(told));
+            told = told.max(done);
+        })?;
+        cancel.did(half - told.min(half));
         let screened = self.names_for_tests().lend_all(cancel, |names| screen(rulebook, names))?;
+        cancel.did(steps - half);
         let (bases, left_out) = (self.bases.as_ref(), &self.producer.left_out);
         let examined = examine(&self.granule, &rulebook.health, bases, left_out, cancel)?;
         Ok(Screened { examined: Some(examined), ..screened })
@@ -130,6 +141,11 @@ impl Review {
         *self.tested.lock().unwrap_or_else(PoisonError::into_inner) = Some(screened);
     }
 
+    /// What tests said that was lent last.
+    pub(super) fn tested(&self) -> Option<Arc<Screened>> {
+        self.tested.lock().unwrap_or_else(PoisonError::into_inner).clone()
+    }
+
     /// Evaluates an expression over what has been read so far; over all of a granule that does not
     /// fit into memory.
     ///
@@ -146,11 +162,29 @@ impl Review {
     /// # Errors
     /// As [`Self::layer`].
     pub fn whole_layer(&self, text: &str, cancel: &Cancel) -> Result<Layer, String> {
-        let parsed = Expression::parse(text);
-        let parsed = parsed.map_err(|error| in_one_line(error.text(), error.mistake()))?;
-        let found = self.names().lend_all(cancel, |names| evaluate_all(&[&parsed], names));
-        let mut layers = found.map_err(|error| error.to_string())?;
-        layers.swap_remove(0).map_err(|error| in_one_line(error.text(), error.mistake()))
+        self.whole_layers(&[text], cancel)?.swap_remove(0)
+    }
+
+    /// The same for several expressions; one that asks for what the granule lacks leaves the others
+    /// alone.
+    ///
+    /// # Errors
+    /// As [`Self::layer`].
+    pub fn whole_layers(
+        &self,
+        texts: &[&str],
+        cancel: &Cancel,
+    ) -> Result<Vec<Result<Layer, String>>, String> {
+        let parse = |text: &&str| {
+            let parsed = Expression::parse(text);
+            parsed.map_err(|error| in_one_line(error.text(), error.mistake()))
+        };
+        let parsed = texts.iter().map(parse).collect::<Result<Vec<Expression>, String>>()?;
+        let all: Vec<&Expression> = parsed.iter().collect();
+        let found = self.names().lend_all(cancel, |names| evaluate_all(&all, names));
+        let layers = found.map_err(|error| error.to_string())?.into_iter();
+        let why = |error: LayerError| in_one_line(error.text(), error.mistake());
+        Ok(layers.map(|layer| layer.map_err(why)).collect())
     }
 
     /// The bands that an expression needs; none where the text is no expression.
@@ -171,7 +205,7 @@ impl Review {
             })
             .collect();
         let good: Vec<&Expression> = parsed.iter().filter_map(|one| one.as_ref().ok()).collect();
-        let tested = self.tested.lock().unwrap_or_else(PoisonError::into_inner).clone();
+        let tested = self.tested();
         let judgements = tested.as_deref().map(|screened| screened as &dyn Judgements);
         let names = self.names().with_judgements(judgements);
         let layers = match self.cube.is_full() {

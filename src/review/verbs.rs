@@ -40,9 +40,6 @@ pub enum Refusal {
     /// There is nothing to redo.
     #[error("nothing to redo")]
     NothingToRedo,
-    /// An undo is not taken back by itself.
-    #[error("this is an undo: choose the decision itself")]
-    UndoNotTurned,
     /// Words are needed and there are none.
     #[error("say why: {0} needs a reason")]
     NoReason(&'static str),
@@ -131,8 +128,10 @@ impl Record {
     pub fn undo(&mut self, now: Timestamp) -> Result<Decision, Refusal> {
         let target = undo_target(self.decisions(), self.person()).ok_or(Refusal::NothingToUndo)?;
         let undone = self.named(&target).ok_or(Refusal::NothingToUndo)?;
-        self.decide(Act::Revoke { decision: target }, None, now);
-        Ok(undone)
+        self.as_part_of(undone.step.clone(), |record| {
+            record.decide(Act::Revoke { decision: target }, None, now);
+            Ok(undone)
+        })
     }
 
     /// Takes back the person's latest undo. Returns the decision that stands again.
@@ -144,8 +143,10 @@ impl Record {
         let undo = self.named(&target).ok_or(Refusal::NothingToRedo)?;
         let Act::Revoke { decision } = &undo.act else { return Err(Refusal::NothingToRedo) };
         let again = self.named(decision).ok_or(Refusal::NothingToRedo)?;
-        self.decide(Act::Revoke { decision: target }, None, now);
-        Ok(again)
+        self.as_part_of(again.step.clone(), |record| {
+            record.decide(Act::Revoke { decision: target }, None, now);
+            Ok(again)
+        })
     }
 
     /// Signs the granule off. With `rest_looked_at`, the footprints without flag and assessment
@@ -222,16 +223,13 @@ impl Record {
     /// it was taken back, and the decision.
     ///
     /// # Errors
-    /// There is no such decision, or it is an undo: what that takes back is put back by its own name.
+    /// There is no such decision.
     pub fn turn(&mut self, id: &DecisionId, now: Timestamp) -> Result<(bool, Decision), Refusal> {
         let named = self.decisions().iter().zip(self.standing()).rev();
         let found = named.clone().find(|(one, _)| one.id == *id);
         let Some((decision, stands)) = found.map(|(one, stands)| (one.clone(), *stands)) else {
             return Err(Refusal::NothingToUndo);
         };
-        if matches!(decision.act, Act::Revoke { .. }) {
-            return Err(Refusal::UndoNotTurned);
-        }
         if stands {
             self.decide(Act::Revoke { decision: id.clone() }, None, now);
             return Ok((true, decision));

@@ -13,6 +13,8 @@ pub struct Offer {
     pub within: Vec<usize>,
     /// Entries beyond them or not to be judged, by reason.
     pub beyond: BTreeMap<String, Vec<usize>>,
+    /// Of those, entries that the rulebook has not screened.
+    pub unscreened: Vec<usize>,
     /// What the spot checks of the rulebook have shown, without flag and with flag.
     pub spot: [ErrorRate; 2],
 }
@@ -32,14 +34,20 @@ impl Tray {
             strata.any(|stratum| stratum.flagged == flagged && stratum.plain > 0)
         });
         let unchecked = spot_reason(&spot, occurs, limits);
-        let mut offer = Offer { within: Vec::new(), beyond: BTreeMap::new(), spot };
+        let mut offer =
+            Offer { within: Vec::new(), beyond: BTreeMap::new(), unscreened: Vec::new(), spot };
         for (number, entry) in self.entries().iter().enumerate() {
             let standing = entry.standing.as_ref().filter(|_| entry.error.is_none());
             let reason = match standing {
                 None => Some("cannot be used, or not read yet".to_owned()),
                 // Done already: neither offered nor told.
                 Some(one) if is_done(one) => continue,
-                Some(one) => reason(one, limits, rulebook).or_else(|| unchecked.clone()),
+                Some(one) => {
+                    if one.tests.as_deref() != Some(rulebook) {
+                        offer.unscreened.push(number);
+                    }
+                    reason(one, limits, rulebook).or_else(|| unchecked.clone())
+                }
             };
             match reason {
                 None => offer.within.push(number),

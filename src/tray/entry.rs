@@ -1,10 +1,11 @@
 //! One granule of the Tray.
 
+use std::collections::BTreeSet;
 use std::path::{Path, PathBuf};
 
 use crate::flags::{
-    Counts, Decision, FlagState, GranuleState, OwnTimes, SpotCheck, Vocabulary, own_times,
-    screened_by, spot_checks,
+    Counts, Decision, FlagState, GranuleState, OwnTimes, SpotCheck, Vocabulary, own_steps,
+    own_times, screened_by, spot_checks,
 };
 use crate::system::clean_text;
 
@@ -23,6 +24,8 @@ pub struct Standing {
     pub spot_checks: Vec<SpotCheck>,
     /// When the person last decided about it; kept up while it is not on the table.
     pub own: OwnTimes,
+    /// The steps over several granules that the person's decisions are parts of, likewise.
+    pub steps: BTreeSet<String>,
 }
 
 /// One granule of the Tray.
@@ -56,6 +59,7 @@ impl Standing {
             tests: screened_by(decisions),
             spot_checks: spot_checks(decisions).into_iter().cloned().collect(),
             own: own_times(decisions, person),
+            steps: own_steps(decisions, person),
         }
     }
 }

@@ -8,6 +8,7 @@ use crate::layers::{Layer, LayerUnit};
 use crate::review::{Record, Review, Spectrum};
 use crate::tray::Standing;
 
+use super::across;
 use super::app::{App, Table};
 use super::bench::{Bench, Quality, RecordState};
 use super::by_rule;
@@ -57,8 +58,13 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         }
         Answer::Exported { request, found } => exported(app, request, found),
         Answer::Against { request, found } => spreading::against_found(app, request, found),
+        Answer::Across { request, entry, found } => across::take(app, request, entry, found),
+        Answer::AcrossFailed { request, why } => {
+            across::failed(app, request, why);
+            Vec::new()
+        }
         Answer::Alike { request, found } => spreading::found(app, request, found),
-        Answer::Adopted { request, found } => adopted(app, request, found),
+        Answer::Adopted { request, found } => spreading::adopted(app, request, found),
         Answer::Selected { request, join, found } => picking::selected(app, request, join, found),
     }
 }
@@ -312,24 +318,6 @@ fn indices(app: &mut App, request: u64, found: Vec<Result<Layer, String>>) -> Ve
         });
     }
     Vec::new()
-}
-
-/// The rulebook has changed: the tests run anew.
-fn adopted(app: &mut App, request: u64, found: Result<String, String>) -> Vec<Job> {
-    if awaited(app, |bench| bench.awaited.adopt == request).is_none() {
-        return Vec::new();
-    }
-    match found {
-        Ok(words) => {
-            let jobs = screening::start(app);
-            app.say(words);
-            jobs
-        }
-        Err(why) => {
-            app.message = (format!("the rulebook stays as it was: {why}"), Tone::Bad);
-            Vec::new()
-        }
-    }
 }
 
 fn quality(app: &mut App, request: u64, found: Vec<Quality>) -> Vec<Job> {

@@ -11,6 +11,7 @@ use crate::granule::Opening;
 use crate::review::Record;
 use crate::tray::Tray;
 
+use super::across::Across;
 use super::bench::{Bench, RecordState};
 use super::colour::{Theme, Tone};
 use super::event::Ending;
@@ -20,6 +21,7 @@ use super::ledger::LedgerLook;
 use super::line::History;
 use super::overlay::{Deed, Overlay};
 use super::panes::{Arrangement, Pane, ScreenLayout};
+use super::spreading::Known;
 use super::strip::Strip;
 
 /// What the review is given from outside; the same for its whole life.
@@ -103,6 +105,10 @@ pub struct App {
     pub ledger: LedgerLook,
     /// Lines of the Evidence that are scrolled away.
     pub evidence_scroll: usize,
+    /// What is being done in granules that are not on the table.
+    pub across: Option<Across>,
+    /// Footprints that persons have decided in granules whose spectra were compared.
+    pub known: Known,
     /// What happened last.
     pub message: (String, Tone),
     /// What was typed on the command line.
@@ -156,6 +162,8 @@ impl App {
             overlay: Overlay::None,
             ledger: LedgerLook::default(),
             evidence_scroll: 0,
+            across: None,
+            known: Known::default(),
             message: (String::new(), Tone::Plain),
             history: History::default(),
             last_deed: None,
@@ -259,6 +267,11 @@ impl App {
     pub fn pending(&self) -> usize {
         let table = self.bench().and_then(|bench| bench.record.open()).map_or(0, Record::pending);
         table + self.left.iter().map(Record::pending).sum::<usize>()
+    }
+
+    /// Whether something runs beside the keys that tells how far it is.
+    pub fn is_working(&self) -> bool {
+        self.across.is_some() || self.bench().is_some_and(|bench| bench.awaited.screen != 0)
     }
 
     /// Why decisions could not be written, if they could not.

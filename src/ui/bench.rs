@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use crate::flags::{FootprintSet, screened_by};
 use crate::granule::Channel;
-use crate::review::{Record, Review, Spectrum};
+use crate::review::{Measure, Measured, Record, Review, Spectrum};
 use crate::screening::Screened;
 use crate::tray::Standing;
 
@@ -52,6 +52,8 @@ pub struct Bench {
     pub selecting: Selecting,
     /// What the Spread is about.
     pub spread: Spread,
+    /// The spectra as they were compared last.
+    pub measured: Option<Arc<Measured>>,
     /// A spot check under way.
     pub spot: Option<Spot>,
     /// What is left in doubt.
@@ -137,6 +139,7 @@ impl Bench {
             selecting: Selecting::default(),
             spread: Spread::default(),
             channel_pick: ChannelPick::default(),
+            measured: None,
             spot: None,
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),
@@ -222,6 +225,11 @@ impl Bench {
         }
     }
 
+    /// The spectra as this measure compares them, if they were compared by it last.
+    pub fn measured_by(&self, measure: Measure) -> Option<Arc<Measured>> {
+        self.measured.clone().filter(|measured| measured.yardstick().measure() == measure)
+    }
+
     /// How many footprints there are.
     pub fn footprints(&self) -> usize {
         self.placement.footprints()
@@ -251,10 +259,8 @@ impl Bench {
     }
 
     fn under_cursor(&self) -> Selection {
-        Selection {
-            footprints: FootprintSet::single(self.cursor),
-            words: format!("footprint {}", self.position_words(self.cursor)),
-        }
+        let words = format!("footprint {}", self.position_words(self.cursor));
+        Selection::of(FootprintSet::single(self.cursor), words)
     }
 
     /// The side of a value that is being typed.
@@ -282,7 +288,7 @@ impl Bench {
         let count = footprints.len();
         let (layer, relation) = (&self.layer.text, side.relation.symbol());
         let words = format!("{count} where {layer} {relation} {}", side.value);
-        Selection { footprints, words }
+        Selection::of(footprints, words)
     }
 
     /// The zero-based indices of a footprint along its dimensions: `(12, 34, 5)`.

@@ -138,6 +138,10 @@ pub struct Overtaken {
     pub layer: Cancel,
     /// The indices.
     pub indices: Cancel,
+    /// The comparison of spectra.
+    pub alike: Cancel,
+    /// The second layer of the Spread.
+    pub against: Cancel,
 }
 
 impl Overtaken {
@@ -145,6 +149,8 @@ impl Overtaken {
     pub fn end_all(&self) {
         self.layer.cancel();
         self.indices.cancel();
+        self.alike.cancel();
+        self.against.cancel();
     }
 }
 

@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use crate::review::rulebook_name;
 use crate::tray::{Offer, Standing};
 
+use super::across::{self, Errand};
 use super::app::App;
 use super::colour::Tone;
 use super::deciding;
@@ -38,6 +39,7 @@ pub fn ask(app: &mut App) -> Vec<Job> {
 pub fn answer(app: &mut App, key: Key, offer: Offer) -> Vec<Job> {
     match key.code {
         _ if is_yes(key) && !offer.within.is_empty() => sign(app, &offer),
+        Code::Char('t' | 'T') if !offer.unscreened.is_empty() => screen(app, &offer),
         Code::Char('n' | 'N') | Code::Esc | Code::Enter => {
             app.say("nothing was signed off");
             Vec::new()
@@ -45,6 +47,39 @@ pub fn answer(app: &mut App, key: Key, offer: Offer) -> Vec<Job> {
         _ => {
             app.overlay = Overlay::ByRule(offer);
             Vec::new()
+        }
+    }
+}
+
+/// The tests run over those that are not screened by the rulebook in force; then it is offered anew.
+/// What they say of the granule on the table is there already, or will be.
+fn screen(app: &mut App, offer: &Offer) -> Vec<Job> {
+    if across::is_writing(app) {
+        return Vec::new();
+    }
+    let here = app.current_entry();
+    if here.is_some_and(|here| offer.unscreened.contains(&here)) {
+        let Some(screened) = app.bench().and_then(|bench| bench.tests.screened.clone()) else {
+            app.say("the tests have not run over the granule on the table yet");
+            return Vec::new();
+        };
+        let done = deciding::decided(app, |record, now| {
+            record.tests_decide(&screened, now).map(|_| "what the tests say is written".to_owned())
+        });
+        if !done {
+            return Vec::new();
+        }
+        if let Some(bench) = app.bench_mut() {
+            bench.compare_tests();
+        }
+    }
+    let others: Vec<usize> =
+        offer.unscreened.iter().copied().filter(|entry| Some(*entry) != here).collect();
+    match others.len() {
+        0 => ask(app),
+        count => {
+            app.say(format!("the tests run over {count} granules…"));
+            across::begin(app, Errand::Screen, &others)
         }
     }
 }
@@ -105,6 +140,10 @@ pub fn lines(app: &App, offer: &Offer) -> Vec<String> {
         lines.push(format!("{reason}: {}", names(app, entries)));
     }
     lines.push(String::new());
+    match offer.unscreened.len() {
+        0 => {}
+        count => lines.push(format!("t: run the tests over the {count} not screened by them")),
+    }
     match offer.within.len() {
         0 => lines.push("Esc: there is nothing to be signed off by rule".to_owned()),
         count => lines.push(format!("y: sign the {count} off; the tests answer for them   n: not")),

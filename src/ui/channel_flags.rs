@@ -127,7 +127,7 @@ fn choose(app: &mut App, give: bool) -> Vec<Job> {
         app.warn(format!("{words}: no flag to withdraw"));
         return Vec::new();
     }
-    let selection = Selection { footprints: Default::default(), words };
+    let selection = Selection::of(Default::default(), words);
     app.overlay = Overlay::Flags(FlagPrompt {
         give,
         selection,

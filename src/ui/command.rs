@@ -22,7 +22,7 @@ pub enum Command {
     /// A second layer for the Spread; none where there are no words.
     Against(String),
     /// Compare all spectra with the one under the cursor.
-    Alike(Measure),
+    Alike(Option<Measure>),
     /// Pick all channels over so many times their noise.
     Noisy(f64),
     /// Take a test in hand, to try its threshold.
@@ -83,13 +83,9 @@ const WORDED: &[Worded] = &[
     },
     Worded {
         name: "like",
-        words: "[angle]",
-        help: "spectra like this one, by distance in BT or spectral angle",
-        parse: |words| match words {
-            "" | "distance" => Ok(Command::Alike(Measure::Distance)),
-            "angle" => Ok(Command::Alike(Measure::Angle)),
-            _ => Err("distance or angle".to_owned()),
-        },
+        words: "[MEASURE]",
+        help: "spectra like this one, by distance (in BT), angle or components",
+        parse: like,
     },
     Worded {
         name: "noisy",
@@ -242,6 +238,15 @@ fn planck(words: &str) -> Result<Command, String> {
     }
 }
 
+fn like(words: &str) -> Result<Command, String> {
+    let named = Measure::ALL.into_iter().find(|measure| measure.word() == words);
+    match (words, named) {
+        ("", _) => Ok(Command::Alike(None)),
+        (_, Some(measure)) => Ok(Command::Alike(Some(measure))),
+        _ => Err("distance, angle or components".to_owned()),
+    }
+}
+
 fn spot(words: &str) -> Result<Command, String> {
     match words.parse() {
         Ok(count @ 1..=1000) => Ok(Command::Spot(count)),
@@ -296,6 +301,7 @@ pub fn completions(before_cursor: &str, known: &Known) -> Vec<String> {
             let (lead, candidates) = match name {
                 "layer" | "against" => ("", known.layers.clone()),
                 "try" => ("", known.tests.clone()),
+                "like" => ("", Measure::ALL.map(|one| one.word().to_owned()).to_vec()),
                 "flag" | "withdraw" => ("", known.flags.clone()),
                 "select" => (sign_of(words), selections(known)),
                 _ => return Vec::new(),

@@ -6,8 +6,9 @@ use std::sync::Arc;
 use jiff::Timestamp;
 
 use crate::flags::{Act, Decision, FootprintSet, Ruling, Scope};
-use crate::review::{Record, Refusal};
+use crate::review::{Record, Refusal, step_name};
 
+use super::across::{self, Errand};
 use super::app::App;
 use super::bench::RecordState;
 use super::jobs::Job;
@@ -127,7 +128,7 @@ fn again(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return no_granule(app) };
     if let Deed::FlagChannels { give, flag, why, .. } = deed {
         let (channels, words) = bench.picked_channels();
-        let selection = Selection { footprints: FootprintSet::empty(), words };
+        let selection = Selection::of(FootprintSet::empty(), words);
         return carry_out(app, Deed::FlagChannels { give, flag, channels, why }, selection);
     }
     let selection = bench.selection();
@@ -136,14 +137,48 @@ fn again(app: &mut App) -> Vec<Job> {
 
 /// Does something to a selection; it is let go then, and a key repeats the deed.
 pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
-    let Selection { footprints, words } = selection;
-    let again = deed.clone();
-    let done = decided(app, move |record, now| match deed {
+    let Selection { footprints, words, elsewhere } = selection;
+    let several = !elsewhere.is_empty();
+    if several && across::is_writing(app) {
+        return Vec::new();
+    }
+    let now = app.now();
+    let step = several.then(|| step_name(&app.outside.author, now));
+    let (again, part) = (deed.clone(), step.clone());
+    let done = decided(app, move |record, _| match several && footprints.is_empty() {
+        true => Ok(words),
+        false => record.as_part_of(part, |record| apply(record, deed, &footprints, &words, now)),
+    });
+    if !done {
+        return Vec::new();
+    }
+    app.last_deed = Some(again.clone());
+    if let Some(bench) = app.bench_mut() {
+        bench.drop_channel_pick();
+        bench.selecting.clear();
+    }
+    let Some(step) = step else { return Vec::new() };
+    let entries: Vec<usize> = elsewhere.keys().copied().collect();
+    across::begin(app, Errand::Decide { deed: again, at: elsewhere, step, now }, &entries)
+}
+
+/// Does something to footprints, which `words` name, or to channels; in words.
+///
+/// # Errors
+/// Those of the verb.
+pub fn apply(
+    record: &mut Record,
+    deed: Deed,
+    footprints: &FootprintSet,
+    words: &str,
+    now: Timestamp,
+) -> Result<String, Refusal> {
+    match deed {
         Deed::Flag { give: true, flag, why } => {
-            record.flag(&flag, &footprints, why, now).map(|()| format!("{words}: {flag}"))
+            record.flag(&flag, footprints, why, now).map(|()| format!("{words}: {flag}"))
         }
         Deed::Flag { flag, why, .. } => {
-            let count = record.withdraw(&flag, &footprints, why, now)?;
+            let count = record.withdraw(&flag, footprints, why, now)?;
             Ok(format!("{words}: {flag} withdrawn from {count}"))
         }
         Deed::FlagChannels { give: true, flag, channels, why } => {
@@ -154,20 +189,12 @@ pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
             Ok(format!("{words}: {flag} withdrawn from {count}"))
         }
         Deed::Assess => {
-            record.assess(&footprints, None, now).map(|()| format!("{words}: looked at"))
+            record.assess(footprints, None, now).map(|()| format!("{words}: looked at"))
         }
-        Deed::Comment(text) => record
-            .comment(&footprints, &text, now)
-            .map(|()| format!("{words}: remark written down")),
-    });
-    if done {
-        app.last_deed = Some(again);
-        if let Some(bench) = app.bench_mut() {
-            bench.drop_channel_pick();
-            bench.selecting.clear();
+        Deed::Comment(text) => {
+            record.comment(footprints, &text, now).map(|()| format!("{words}: remark written down"))
         }
     }
-    Vec::new()
 }
 
 fn assess(app: &mut App) -> Vec<Job> {

@@ -122,7 +122,7 @@ fn show_case(app: &mut App, number: usize) -> Vec<Job> {
     let count = case.footprints.len();
     let suggested = bench.tests.screened.as_ref().map(|screened| suggested(screened, &case));
     let words = format!("case of {count}");
-    bench.selecting.take(Join::Anew, Selection { footprints: case.footprints, words });
+    bench.selecting.take(Join::Anew, Selection::of(case.footprints, words));
     let all = bench.doubt.cases.len();
     let jobs = moving::go(app, case.worst);
     let (doubt, suggested) = (case.doubt, suggested.unwrap_or_default());

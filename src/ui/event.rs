@@ -21,6 +21,8 @@ pub enum Event {
     LedgerMoved,
     /// The cursor has not moved for a moment.
     Rested,
+    /// A moment has passed in which work went on beside the keys.
+    Working,
     /// A while has passed without anything else.
     Quiet,
     /// Stop to the shell, as Ctrl-Z asks for.

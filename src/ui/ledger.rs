@@ -76,7 +76,11 @@ pub fn take_back(app: &mut App) -> Vec<Job> {
     let jobs = deciding::change(app, |record, now| {
         let (taken, decision) = record.turn(&id, now)?;
         let verb = if taken { "taken back" } else { "put back" };
-        Ok(format!("{verb}: {} by {}", words(&decision), decision.speaker()))
+        let what = match (&decision.act, record.meant_by(&decision)) {
+            (Act::Revoke { .. }, Some(meant)) => format!("what was done to {}", words(meant)),
+            _ => words(&decision),
+        };
+        Ok(format!("{verb}: {what} by {}", decision.speaker()))
     });
     // The newest stands first: the cursor stays on the decision that it was on.
     let added = rows_on_show(app).len().saturating_sub(rows.len());

@@ -8,6 +8,7 @@
 //!
 //! **Never** computes physics.
 
+mod across;
 mod answers;
 pub mod app;
 pub mod bench;
@@ -22,6 +23,7 @@ mod doubting;
 mod draw;
 pub mod event;
 mod input;
+mod job_answers;
 pub mod jobs;
 pub mod key;
 mod keyboard;
@@ -68,6 +70,7 @@ mod update;
 mod views;
 pub mod widgets;
 mod work;
+mod work_across;
 
 pub use app::{App, Outside};
 pub use draw::draw;

@@ -1,5 +1,7 @@
 //! What lies over the panes and takes the keys: help, prompts, questions.
 
+use std::collections::BTreeMap;
+
 use crate::flags::{ChannelName, FootprintSet};
 
 use crate::tray::Offer;
@@ -78,6 +80,20 @@ pub struct Selection {
     pub footprints: FootprintSet,
     /// "footprint (12, 34)", "box of 48", "bt(900) < 230".
     pub words: String,
+    /// Footprints of other granules, by their entries in the Tray.
+    pub elsewhere: BTreeMap<usize, FootprintSet>,
+}
+
+impl Selection {
+    /// Footprints of the granule on the table.
+    pub fn of(footprints: FootprintSet, words: String) -> Selection {
+        Selection { footprints, words, elsewhere: BTreeMap::new() }
+    }
+
+    /// How many footprints there are in all granules.
+    pub fn count(&self) -> usize {
+        self.footprints.len() + self.elsewhere.values().map(FootprintSet::len).sum::<usize>()
+    }
 }
 
 /// What can be done to a selection, and once more to another.
@@ -110,6 +126,20 @@ pub enum Deed {
 }
 
 impl Deed {
+    /// In words: "so2", "so2 withdrawn", "looked at".
+    pub fn words(&self) -> String {
+        match self {
+            Deed::Flag { give: true, flag, .. } | Deed::FlagChannels { give: true, flag, .. } => {
+                flag.clone()
+            }
+            Deed::Flag { flag, .. } | Deed::FlagChannels { flag, .. } => {
+                format!("{flag} withdrawn")
+            }
+            Deed::Assess => "looked at".to_owned(),
+            Deed::Comment(_) => "remark".to_owned(),
+        }
+    }
+
     /// A flag given to or withdrawn from channels where there are some, else footprints.
     pub fn flag(
         give: bool,

@@ -153,7 +153,7 @@ pub fn select(app: &mut App, join: Join, wanted: Wanted) -> Vec<Job> {
         }
     };
     match footprints {
-        Some(footprints) => take(app, join, Selection { footprints, words }, None),
+        Some(footprints) => take(app, join, Selection::of(footprints, words), None),
         None => return deciding::not_ready(app),
     }
     Vec::new()
@@ -183,7 +183,7 @@ fn select_by_test(app: &mut App, join: Join, name: &str, says: Says) -> Vec<Job>
     let verdicts = result.verdicts.iter().enumerate();
     let footprints = verdicts.filter(|(_, verdict)| says.fits(**verdict)).map(|(one, _)| one);
     let words = Wanted::Test(test.name.clone(), says).words();
-    let selection = Selection { footprints: footprints.collect(), words };
+    let selection = Selection::of(footprints.collect(), words);
     take(app, join, selection, (!result.lacks.is_empty()).then(|| result.lacks.clone()));
     Vec::new()
 }

@@ -18,6 +18,8 @@ use super::{keyboard, signals, terminal, turning, work};
 const LEDGER_PAUSE: Duration = Duration::from_millis(15);
 /// After so long without any event the ledgers are read once more: others may have decided.
 const QUIET: Duration = Duration::from_secs(10);
+/// While work goes on beside the keys, how far it is is drawn anew so often.
+const WORK_PAUSE: Duration = Duration::from_millis(250);
 /// Where little is to be sent the cursor rests after so long without an event: longer than a key that
 /// is held down takes to come again.
 const REST: Duration = Duration::from_millis(150);
@@ -72,6 +74,7 @@ fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
     let (pause, passed) = match (app.rested, writing) {
         (false, _) => (REST, Event::Rested),
         (true, true) => (LEDGER_PAUSE, Event::LedgerMoved),
+        (true, false) if app.is_working() => (WORK_PAUSE, Event::Working),
         (true, false) => (QUIET, Event::Quiet),
     };
     match events.recv_timeout(pause) {

@@ -51,6 +51,7 @@ fn lane_of(job: &Job) -> Lane {
         Job::Along { .. } => Lane::Along,
         Job::Screen { .. } => Lane::Screen,
         Job::Standing { .. } | Job::SignOff { .. } => Lane::InTurn,
+        Job::Across { .. } => Lane::Alone,
         Job::Open { .. } | Job::Fill { .. } | Job::Record { .. } | Job::Quality { .. } => {
             Lane::Alone
         }

@@ -164,7 +164,7 @@ fn finish(app: &mut App) -> Vec<Job> {
         && let Some(bench) = app.bench_mut()
     {
         let words = format!("{} judged wrong", wrong.len());
-        bench.selecting.take(Join::Anew, Selection { footprints: wrong, words });
+        bench.selecting.take(Join::Anew, Selection::of(wrong, words));
     }
     Vec::new()
 }

@@ -161,10 +161,15 @@ fn put_away(app: &mut App) {
     bench.filling.cancel.cancel();
     bench.tests.cancel.cancel();
     bench.overtaken.end_all();
-    let own = bench
-        .record
-        .open()
-        .map(|record| Standing { own: record.own_times(), ..bench.standing(record) });
+    // Comparing is about a footprint of it; what is being decided goes on.
+    if let Some(across) = app.across.take_if(|across| !across.writes()) {
+        across.end();
+    }
+    let own = bench.record.open().map(|record| Standing {
+        own: record.own_times(),
+        steps: record.own_steps(),
+        ..bench.standing(record)
+    });
     if let Some(standing) = own {
         app.tray.set_standing(bench.entry, standing);
     }
@@ -189,7 +194,11 @@ pub fn leave(app: &mut App) -> Vec<Job> {
     app.leaving = true;
     leave_if_written(app);
     if app.ended.is_none() && !matches!(app.overlay, Overlay::LeaveAnyway) {
-        app.say(format!("writing {} decisions…", app.pending()));
+        let words = match &app.across {
+            Some(across) => format!("{}, then leaving; Esc ends it", across.words()),
+            None => format!("writing {} decisions…", app.pending()),
+        };
+        app.say(words);
     }
     Vec::new()
 }
@@ -201,6 +210,9 @@ pub fn leave_anyway(app: &mut App) -> Vec<Job> {
 }
 
 fn leave_if_written(app: &mut App) {
+    if app.across.as_ref().is_some_and(|across| across.writes()) {
+        return;
+    }
     if app.pending() == 0 {
         app.ended = Some(0);
     } else if app.write_failure().is_some() {

@@ -4,6 +4,7 @@ use jiff::Timestamp;
 
 use crate::flags::OwnTimes;
 
+use super::across::{self, Errand};
 use super::app::{App, Direction};
 use super::deciding::{self, words};
 use super::jobs::Job;
@@ -14,6 +15,9 @@ use super::turning;
 /// Takes back the person's latest decision, or the latest undo. Where that was about another
 /// granule, it is opened first, so that one sees what is taken back.
 pub fn undo_or_redo(app: &mut App, action: Action) -> Vec<Job> {
+    if across::is_writing(app) {
+        return Vec::new();
+    }
     let Some(bench) = app.bench() else { return super::looking::no_granule(app) };
     let (here, entry) = (bench.record.open().map(|record| record.own_times()), bench.entry);
     let Some(here) = here else { return deciding::not_ready(app) };
@@ -56,11 +60,22 @@ fn elsewhere(app: &App, here: &OwnTimes, entry: usize, action: Action) -> Elsewh
     latest.map_or(Elsewhere::Nothing, |(entry, _)| Elsewhere::Later(entry))
 }
 
+/// Undoes or redoes here, and in all other granules that the same step decided about.
 fn in_this_granule(app: &mut App, action: Action) -> Vec<Job> {
-    deciding::change(app, |record, now| match action {
-        Action::Undo => record.undo(now).map(|decision| format!("undone: {}", words(&decision))),
-        _ => record.redo(now).map(|decision| format!("redone: {}", words(&decision))),
-    })
+    let (back, now, mut step) = (action == Action::Undo, app.now(), None);
+    let done = deciding::decided(app, |record, _| {
+        let decision = if back { record.undo(now)? } else { record.redo(now)? };
+        step.clone_from(&decision.step);
+        let verb = if back { "undone" } else { "redone" };
+        Ok(format!("{verb}: {}", words(&decision)))
+    });
+    let Some(step) = step.filter(|_| done) else { return Vec::new() };
+    let part = |entry: &usize| {
+        let standing = app.tray.entry(*entry).and_then(|row| row.standing.as_ref());
+        standing.is_some_and(|standing| standing.steps.contains(&step))
+    };
+    let entries: Vec<usize> = across::others(app).into_iter().filter(part).collect();
+    across::begin(app, Errand::Turn { step, back, now }, &entries)
 }
 
 /// The granule that an undo or a redo was about is open: it is done, with the cursor at the place.

@@ -9,8 +9,8 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    answers, by_rule, channel_flags, deciding, doubting, ledger, looking, moving, picking, prompts,
-    screening, spot, spreading, strip, tracing, turning, typing,
+    across, answers, by_rule, channel_flags, deciding, doubting, ledger, looking, moving, picking,
+    prompts, screening, spot, spreading, strip, tracing, turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -25,6 +25,8 @@ pub fn update(app: &mut App, event: Event) -> Vec<Job> {
             app.rested = true;
             Vec::new()
         }
+        // What is drawn tells how far the work is.
+        Event::Working => Vec::new(),
         Event::Quiet => turning::look_for_others(app),
         Event::Suspend => {
             app.suspend = true;
@@ -97,8 +99,8 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
             deciding::decide(app, action)
         }
         A::NextTest | A::PreviousTest | A::Valley | A::TurnSide => spreading::act(app, action),
-        A::Alike => spreading::ask(app, crate::review::Measure::Distance),
-        A::Growing => spreading::switch_growing(app),
+        A::Alike => spreading::ask(app, None),
+        A::Growing => spreading::switch(app),
         A::ChannelInterval | A::FlagChannels | A::WithdrawChannels => {
             channel_flags::act(app, action)
         }
@@ -174,7 +176,7 @@ fn next_pane(app: &App, forward: bool) -> Pane {
     pane
 }
 
-/// Esc lets go of one thing at a time: leaving, opening, selection, zoomed pane, running tests, then
+/// Esc lets go of one thing at a time: leaving, what runs through the Tray, opening, selection, zoomed pane, running tests, then
 /// the message.
 fn cancel(app: &mut App) -> Vec<Job> {
     if app.leaving {
@@ -183,6 +185,9 @@ fn cancel(app: &mut App) -> Vec<Job> {
         return Vec::new();
     }
     let let_go = |bench: &mut Bench| bench.selecting.let_go() || bench.drop_channel_pick();
+    if across::give_up(app) {
+        return Vec::new();
+    }
     let dropped = picking::give_up(app) || app.bench_mut().is_some_and(let_go);
     if matches!(app.table, Table::Opening { .. }) {
         turning::give_up_opening(app);

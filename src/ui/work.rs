@@ -22,6 +22,7 @@ use super::selecting::where_holds;
 use super::spreading::{Against, Alike};
 use super::strip;
 use super::trace_look::{Beside, ReferenceFile};
+use super::work_across::{PATIENCE, across};
 
 /// Progress is told no more often than this: each time the map is evaluated and drawn anew.
 const PROGRESS_PAUSE: Duration = Duration::from_millis(80);
@@ -42,10 +43,14 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             send(Answer::Against { request: *request, found: layer });
         }
         Job::Alike { request, review, footprint, measure, cancel } => {
-            let (footprint, measure) = (*footprint, *measure);
-            let values = review.alike(footprint, measure, cancel);
-            let found = values.map(|values| Alike { footprint, measure, values });
+            let measured = review
+                .yardstick(*measure)
+                .and_then(|yardstick| review.measured(&Arc::new(yardstick), cancel).map(Arc::new));
+            let found = measured.and_then(|measured| Alike::of(measured, *footprint));
             send(Answer::Alike { request: *request, found });
+        }
+        Job::Across { request, errand, paths, cancel } => {
+            across(*request, errand, paths, cancel, outside, send);
         }
         Job::Adopt { request, change } => {
             let found = adopt_threshold(&outside.campaign, &outside.author, change);
@@ -164,6 +169,8 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Reread { .. } | Job::Keep { .. } | Job::Beside { .. } | Job::Along { .. } => {
             return None;
         }
+        // The others of its granules are given up with it.
+        Job::Across { request, .. } => Answer::AcrossFailed { request: *request, why: why() },
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
 }
@@ -203,7 +210,7 @@ fn trace(review: &Review, ask: &TraceAsk) -> Result<TraceFound, String> {
     }
 }
 
-fn in_words(error: GranuleError) -> String {
+pub fn in_words(error: GranuleError) -> String {
     error.to_string()
 }
 
@@ -234,7 +241,7 @@ fn fill(
     }
 }
 
-fn record(
+pub fn record(
     review: &Review,
     outside: &Outside,
 ) -> Result<(Box<Record>, Option<place::Place>), String> {
@@ -280,9 +287,6 @@ fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
     let footprints = review.granule().footprints().count();
     Ok(Standing::of(footprints, &decisions, vocabulary, &outside.author.person))
 }
-
-/// How long a slow disk may take before a sign-off counts as not written.
-const PATIENCE: Duration = Duration::from_secs(60);
 
 /// Signs a granule off, unless somebody has changed it meanwhile so that it is not within the limits
 /// any more.

@@ -16,7 +16,7 @@ use crate::system::Cancel;
 
 /// Examines all bands. What is not in memory is read, more than once. Components are those `saved` of
 /// other granules, if they are given, or else the granule's own. Footprints that are `left_out` are not
-/// looked at; none where it is empty.
+/// looked at; none where it is empty. `cancel` is told of every spectrum of a band that is looked at.
 ///
 /// # Errors
 /// The file can't be read, or `cancel` was asked for.

@@ -29,6 +29,7 @@ impl<'g> Spectra<'g> {
 
     /// Missing where they cannot be read, and from then on.
     fn values(&self, band: usize, footprint: usize, out: &mut Vec<f64>) {
+        self.cancel.did(1);
         if self.leaves_out(footprint) {
             return self.nothing(band, out);
         }

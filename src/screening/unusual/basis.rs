@@ -39,6 +39,9 @@ const MOST_MISSING: f64 = 0.05;
 /// Rounds of filling in what is missing with what the components say; each shrinks the error by about
 /// the share that is missing.
 const FILLING_ROUNDS: usize = 8;
+/// Variance along a component, in noise units squared, from which on it is signal for the better half:
+/// the noise's own is 1.
+const LEAST_SIGNAL: f64 = 2.0;
 
 impl Basis {
     /// How many components it has.
@@ -72,25 +75,47 @@ impl Basis {
     /// What the components do not explain of a spectrum (radiances of all channels of the band), in
     /// noise units. Missing channels are NaN; all of them where too many are missing.
     pub fn residual(&self, radiances: &[f64]) -> Vec<f64> {
-        let channels = self.channels.iter().zip(self.mean.iter().zip(&self.noise));
-        let plain: Vec<f64> =
-            channels.map(|(&channel, (mean, noise))| (radiances[channel] - mean) / noise).collect();
-        let missing: Vec<usize> = (0..plain.len()).filter(|at| !plain[*at].is_finite()).collect();
-        if missing.is_empty() {
-            return self.unexplained(&plain);
-        }
-        if missing.len() as f64 > MOST_MISSING * plain.len() as f64 {
-            return vec![f64::NAN; plain.len()];
-        }
-        let mut filled = plain;
-        missing.iter().for_each(|at| filled[*at] = 0.0);
+        let Some((filled, missing)) = self.filled(radiances) else {
+            return vec![f64::NAN; self.channels.len()];
+        };
         let mut rest = self.unexplained(&filled);
-        for _ in 0..FILLING_ROUNDS {
-            missing.iter().for_each(|at| filled[*at] -= rest[*at]);
-            rest = self.unexplained(&filled);
-        }
         missing.iter().for_each(|at| rest[*at] = f64::NAN);
         rest
+    }
+
+    /// Where a spectrum (radiances of all channels of the band) lies along each component that varies
+    /// by twice its noise or more, in standard deviations of the training's spectra: differences of
+    /// these are what distances of [Mahalanobis 1936] are made of. Along the other components the noise
+    /// would decide. NaN where too much is missing.
+    pub fn coordinates(&self, radiances: &[f64]) -> Vec<f64> {
+        let signal = (0..self.components()).filter(|at| self.variances[*at] >= LEAST_SIGNAL);
+        let Some((filled, _)) = self.filled(radiances) else {
+            return signal.map(|_| f64::NAN).collect();
+        };
+        let along = |number: usize| -> f64 {
+            self.component(number).iter().zip(&filled).map(|(a, b)| a * b).sum()
+        };
+        signal.map(|number| along(number) / self.variances[number].sqrt()).collect()
+    }
+
+    /// A spectrum in noise units, with what is missing filled in by what the components say, and which
+    /// channels those are; `None` where too many are missing.
+    fn filled(&self, radiances: &[f64]) -> Option<(Vec<f64>, Vec<usize>)> {
+        let channels = self.channels.iter().zip(self.mean.iter().zip(&self.noise));
+        let mut filled: Vec<f64> =
+            channels.map(|(&channel, (mean, noise))| (radiances[channel] - mean) / noise).collect();
+        let missing: Vec<usize> = (0..filled.len()).filter(|at| !filled[*at].is_finite()).collect();
+        if missing.len() as f64 > MOST_MISSING * filled.len() as f64 {
+            return None;
+        }
+        missing.iter().for_each(|at| filled[*at] = 0.0);
+        // The first round finds what is missing of zero, the others what is missing of that.
+        let rounds = if missing.is_empty() { 0 } else { FILLING_ROUNDS };
+        for _ in 0..rounds {
+            let rest = self.unexplained(&filled);
+            missing.iter().for_each(|at| filled[*at] -= rest[*at]);
+        }
+        Some((filled, missing))
     }
 
     /// The same components seen through fewer channels (places in the band): what is left of them is
@@ -184,6 +209,16 @@ pub mod tests {
         assert_eq!(score(&residual), 0.5_f64.sqrt());
         assert_eq!(basis.leverages(), [0.5; 4]);
         assert!((basis.limit(4.0) - 1.1).abs() < 1e-15);
+    }
+
+    #[test]
+    fn coordinates_are_in_deviations_and_leave_out_what_is_noise() {
+        let basis = small();
+        // 2 along the first component and 4 along the second, whose deviations are 3 and 2.
+        assert_eq!(basis.coordinates(&[8.0, 16.0, 8.0, 16.0]), [2.0 / 3.0, 2.0]);
+        let basis = Basis { variances: vec![9.0, 1.5], ..small() };
+        assert_eq!(basis.coordinates(&[8.0, 16.0, 8.0, 16.0]), [2.0 / 3.0]);
+        assert!(basis.coordinates(&[8.0, f64::NAN, 8.0, 16.0])[0].is_nan(), "a quarter is missing");
     }
 
     #[test]

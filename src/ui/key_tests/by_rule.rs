@@ -81,3 +81,32 @@ fn limits_that_are_no_shares_are_refused() {
     assert!(wrong.contains("[sign_off] doubt = 2"), "{wrong}");
     assert!(crate::flags::CampaignSettings::parse("[sign_off]\ndout = 0.1").is_err());
 }
+
+#[test]
+fn granules_that_were_not_screened_are_screened_on_request_and_offered_anew() {
+    let place = two_of_three_screened("doubt = 0.2\nspot_error = 0.3");
+    let mut trial = place.review(&NAMES);
+    spot_check(&mut trial);
+    trial.keys("*");
+    assert!(trial.screen(120, 40).contains("t: run the tests over the 1 not screened by them"));
+    trial.press("t");
+    assert!(trial.screen(120, 40).contains("tests in 1 of 1"), "{}", trial.screen(120, 40));
+    trial.settle();
+    let text = trial.screen(120, 40);
+    assert!(text.contains("within: 3: a.nc, b.nc, c.nc"), "{text}");
+    trial.keys("y");
+    assert_eq!(states(&trial), [GranuleState::SignedOff; 3]);
+}
+
+#[test]
+fn the_tests_over_the_tray_end_with_esc() {
+    let place = two_of_three_screened("doubt = 0.2\nspot_error = 0.3");
+    let mut trial = place.review(&NAMES);
+    trial.keys("*");
+    trial.press("t");
+    trial.press("Esc");
+    trial.settle();
+    assert!(trial.message().starts_with("ended: done in 0 of 1"), "{}", trial.message());
+    trial.keys("*");
+    assert!(trial.screen(120, 40).contains("not screened: 1: c.nc"), "nothing was written");
+}

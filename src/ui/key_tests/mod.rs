@@ -1,5 +1,6 @@
 //! Start state, keys, expected.
 
+mod across;
 mod channel_flags;
 mod by_rule;
 mod deciding;

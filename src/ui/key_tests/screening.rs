@@ -161,7 +161,7 @@ fn a_mistaken_rulebook_is_told_and_harms_nothing_else() {
 fn running_tests_are_given_up_by_escape() {
     let (_place, mut trial) = one_granule();
     trial.press("T");
-    assert!(trial.screen(120, 40).contains("tests running"));
+    assert!(trial.screen(120, 40).contains("tests 0 %, Esc ends them"));
     trial.press("Esc");
     trial.settle();
     assert!(trial.message().contains("given up"), "{}", trial.message());

@@ -42,7 +42,7 @@ proptest! {
         count in 0usize..40, cursor in 0usize..50, share: f64, focused: bool,
     ) {
         let shares = Some(TrayShares { flagged: share, no_flag: share, not_assessed: share, in_doubt: Some(share) });
-        let row = TrayRow { state: TrayState::InHand, name, shares };
+        let row = TrayRow { state: TrayState::InHand, name, shares, note: String::new() };
         let rows = vec![row; count];
         let view = TrayView { rows: &rows, current: cursor / 2, cursor, focused };
         let mut screen = Screen::new(width, height);

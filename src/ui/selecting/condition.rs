@@ -25,5 +25,5 @@ pub fn where_holds(review: &Review, text: &str, cancel: &Cancel) -> Found {
     let footprints = values.filter(|(_, value)| holds(value)).map(|(one, _)| one).collect();
     let note = (missing > 0).then(|| format!("{missing} have no value and are left out"));
     let words = Wanted::Condition(text.to_owned()).words();
-    Ok((Selection { footprints, words }, note))
+    Ok((Selection::of(footprints, words), note))
 }

@@ -99,7 +99,7 @@ impl Selecting {
             Join::Anew => new.words,
             _ => format!("selection of {}", footprints.len()),
         };
-        Selection { footprints, words }
+        Selection::of(footprints, words)
     }
 
     /// Selects; what was being drawn is let go. Nothing is selected where that leaves nothing.
@@ -114,7 +114,7 @@ impl Selecting {
             self.kept.as_ref().map_or_else(FootprintSet::empty, |kept| kept.footprints.clone());
         let footprints = FootprintSet::all(count).minus(&kept);
         let words = format!("selection of {}", footprints.len());
-        self.replace((!footprints.is_empty()).then_some(Selection { footprints, words }));
+        self.replace((!footprints.is_empty()).then_some(Selection::of(footprints, words)));
     }
 
     /// Lets go of the shape, or where there is none of the selection; false where there is neither.
@@ -156,7 +156,7 @@ mod tests {
     use super::*;
 
     fn some(range: std::ops::Range<usize>) -> Selection {
-        Selection { footprints: FootprintSet::range(range), words: "some".to_owned() }
+        Selection::of(FootprintSet::range(range), "some".to_owned())
     }
 
     fn kept(selecting: &Selecting) -> Vec<usize> {

@@ -1,9 +1,12 @@
 //! A selection in the making.
 
+use std::collections::BTreeMap;
+
 use crate::flags::FootprintSet;
 use crate::ui::bench::Bench;
 use crate::ui::overlay::Selection;
 use crate::ui::side::Side;
+use crate::ui::spreading::{Alike, Reach};
 
 use super::{connected, is_inside};
 
@@ -34,7 +37,7 @@ impl Shape {
                 let between = bench.placement.footprints_between(*anchor, bench.cursor);
                 let footprints: FootprintSet = between.into_iter().collect();
                 let words = format!("box of {}", footprints.len());
-                Selection { footprints, words }
+                Selection::of(footprints, words)
             }
             Shape::Polygon(corners) => polygon(bench, corners),
             Shape::Side(side) => bench.side_selection(*side),
@@ -65,7 +68,7 @@ fn on_one_layer(shape: &Shape, bench: &Bench) -> Selection {
     let footprints: FootprintSet =
         all.filter(|(_, value)| is_in(**value)).map(|(one, _)| one).collect();
     let footprints = match (bench.spread_alike(), shape) {
-        (Some(alike), Shape::Threshold) if bench.spread.grown => {
+        (Some(alike), Shape::Threshold) if bench.spread.reach == Reach::Grown => {
             connected(&footprints, alike.footprint, &bench.placement)
         }
         _ => footprints,
@@ -75,7 +78,28 @@ fn on_one_layer(shape: &Shape, bench: &Bench) -> Selection {
         Shape::Range(from) => format!("{count} where {name} is {} to {}", from.min(x), from.max(x)),
         _ => format!("{count} where {name} {} {x}", bench.spread_sense().symbol()),
     };
-    Selection { footprints, words }
+    match (bench.spread_alike(), shape) {
+        (Some(alike), Shape::Threshold) if bench.spread.reach == Reach::Tray => {
+            in_tray(footprints, alike, x, bench)
+        }
+        _ => Selection::of(footprints, words),
+    }
+}
+
+/// The footprints of all granules that are less than `x` from one of them.
+fn in_tray(footprints: FootprintSet, alike: &Alike, x: f64, bench: &Bench) -> Selection {
+    let near = |values: &Vec<f64>| -> FootprintSet {
+        let all = values.iter().enumerate();
+        all.filter(|(_, value)| **value < x).map(|(one, _)| one).collect()
+    };
+    let sets = alike.elsewhere.iter().map(|(entry, values)| (*entry, near(values)));
+    let elsewhere: BTreeMap<usize, FootprintSet> =
+        sets.filter(|(_, set)| !set.is_empty()).collect();
+    let granules = elsewhere.len() + usize::from(!footprints.is_empty());
+    let mut selection = Selection { footprints, words: String::new(), elsewhere };
+    let (count, name) = (selection.count(), bench.spread_name());
+    selection.words = format!("{count} in {granules} granules where {name} < {x}");
+    selection
 }
 
 /// The footprints whose two values lie in a polygon.
@@ -86,7 +110,7 @@ fn on_two_layers(bench: &Bench, corners: &[(f64, f64)]) -> Selection {
     let footprints: FootprintSet =
         pairs.filter(|(_, pair)| is_inside(corners, *pair)).map(|(one, _)| one).collect();
     let words = format!("{} on the Spread", footprints.len());
-    Selection { footprints, words }
+    Selection::of(footprints, words)
 }
 
 fn polygon(bench: &Bench, corners: &[usize]) -> Selection {
@@ -99,5 +123,5 @@ fn polygon(bench: &Bench, corners: &[usize]) -> Selection {
     let is_in = |one: &usize| place(*one).is_some_and(|place| is_inside(&corners, place));
     let footprints: FootprintSet = (0..bench.footprints()).filter(is_in).collect();
     let words = format!("polygon of {}", footprints.len());
-    Selection { footprints, words }
+    Selection::of(footprints, words)
 }

@@ -5,14 +5,15 @@ use std::sync::Arc;
 use super::{Against, Source};
 use crate::review::ThresholdChange;
 use crate::screening::{Sense, Threshold, proposed_threshold};
-use crate::system::Cancel;
 use crate::ui::app::App;
-use crate::ui::bench::Bench;
+use crate::ui::bench::{Bench, overtake};
+use crate::ui::colour::Tone;
 use crate::ui::event::Button;
 use crate::ui::jobs::Job;
 use crate::ui::keys::Action;
 use crate::ui::looking::no_granule;
 use crate::ui::overlay::{LinePrompt, Overlay, Purpose};
+use crate::ui::screening;
 use crate::ui::selecting::Shape;
 
 /// Steps that the range of values is divided into, at the least.
@@ -192,7 +193,8 @@ pub fn against(app: &mut App, text: &str) -> Vec<Job> {
         return Vec::new();
     }
     bench.awaited.against = request;
-    let (review, cancel) = (Arc::clone(&bench.review), Cancel::new());
+    let cancel = overtake(&mut bench.overtaken.against);
+    let review = Arc::clone(&bench.review);
     vec![Job::Against { request, review, text: text.to_owned(), cancel }]
 }
 
@@ -267,4 +269,23 @@ pub fn adopt(app: &mut App, why: Option<String>) -> Vec<Job> {
     let change = ThresholdChange { test, way, to, fingerprint, why, now };
     bench.awaited.adopt = request;
     vec![Job::Adopt { request, change }]
+}
+
+/// The rulebook has changed: the tests run anew.
+pub fn adopted(app: &mut App, request: u64, found: Result<String, String>) -> Vec<Job> {
+    let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.adopt == request) else {
+        return Vec::new();
+    };
+    bench.awaited.adopt = 0;
+    match found {
+        Ok(words) => {
+            let jobs = screening::start(app);
+            app.say(words);
+            jobs
+        }
+        Err(why) => {
+            app.message = (format!("the rulebook stays as it was: {why}"), Tone::Bad);
+            Vec::new()
+        }
+    }
 }

@@ -3,45 +3,61 @@
 use std::sync::Arc;
 
 use super::acting::{nudged, put};
-use super::{Alike, Source};
+use super::{Alike, Reach, Source};
 use crate::review::Measure;
 use crate::screening::proposed_threshold;
-use crate::system::Cancel;
 use crate::ui::app::App;
-use crate::ui::bench::Bench;
+use crate::ui::bench::{Bench, overtake};
 use crate::ui::jobs::Job;
 use crate::ui::keys::Action;
 use crate::ui::looking::no_granule;
 use crate::ui::panes::Pane;
 use crate::ui::panes::field::Placement;
 
-/// Asks how far every spectrum is from the one under the cursor.
-pub fn ask(app: &mut App, measure: Measure) -> Vec<Job> {
+/// Asks how far every spectrum is from the one under the cursor, by this measure; without one by the
+/// usual one, or the next where that footprint is compared already.
+pub fn ask(app: &mut App, measure: Option<Measure>) -> Vec<Job> {
     let request = app.request();
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     if !bench.filling.done {
         app.say("spectra are compared as soon as all are read");
         return Vec::new();
     }
+    let measure = measure.unwrap_or_else(|| next_measure(bench));
     bench.awaited.alike = request;
-    let (review, footprint) = (Arc::clone(&bench.review), bench.cursor);
-    app.say("comparing spectra…");
-    vec![Job::Alike { request, review, footprint, measure, cancel: Cancel::new() }]
+    let cancel = overtake(&mut bench.overtaken.alike);
+    let footprint = bench.cursor;
+    if let Some(measured) = bench.measured_by(measure) {
+        return found(app, request, Alike::of(measured, footprint));
+    }
+    let review = Arc::clone(&bench.review);
+    app.say(format!("comparing spectra by {}…", measure.words()));
+    vec![Job::Alike { request, review, footprint, measure, cancel }]
 }
 
-/// Waits for no comparison and no second layer any longer; false where none is awaited.
+fn next_measure(bench: &Bench) -> Measure {
+    let Some(alike) = bench.spread_alike().filter(|alike| alike.footprint == bench.cursor) else {
+        return Measure::default();
+    };
+    let here = Measure::ALL.iter().position(|one| *one == alike.measure());
+    Measure::ALL[here.map_or(0, |here| (here + 1) % Measure::ALL.len())]
+}
+
+/// Ends the comparison and the second layer that are awaited; false where none is.
 pub fn give_up(app: &mut App) -> bool {
     let awaits = |bench: &&mut Bench| bench.awaited.alike != 0 || bench.awaited.against != 0;
     let Some(bench) = app.bench_mut().filter(awaits) else { return false };
     bench.awaited.alike = 0;
     bench.awaited.against = 0;
+    bench.overtaken.alike.cancel();
+    bench.overtaken.against.cancel();
     app.say("given up");
     true
 }
 
 /// Shows the distances on the Spread, with a threshold at the valley between alike and other ones.
 pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<Job> {
-    let (growing, leave) = (app.keymap.hint(Action::Growing), app.keymap.hint(Action::Cancel));
+    let (like, reach) = (app.keymap.hint(Action::Alike), app.keymap.hint(Action::Growing));
     let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.alike == request) else {
         return Vec::new();
     };
@@ -54,9 +70,11 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
         }
     };
     bench.forget_spread();
+    bench.measured = Some(Arc::clone(&alike.measured));
     bench.spread.against = None;
     bench.spread.above = false;
-    bench.spread.grown = true;
+    bench.spread.reach = Reach::Grown;
+    let words = alike.measure().words();
     let cut = first_cut(&alike, &bench.placement);
     bench.spread.alike = Some(alike);
     bench.spread.source = Source::Alike;
@@ -69,7 +87,7 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
     put(bench, nudged(cut, 0.0, range), None);
     app.panes.focus_on(Pane::Spread);
     app.say(format!(
-        "like this one: Left and Right say how alike, {growing} grown or everywhere, {leave} leaves it"
+        "like this one by {words}: Left Right how alike, {reach} how far, {like} by what"
     ));
     Vec::new()
 }
@@ -89,13 +107,4 @@ fn first_cut(alike: &Alike, map: &Placement) -> Option<f64> {
     near.sort_by(f64::total_cmp);
     let usual = near.get(near.len() / 2).map_or(valley, |median| 2.0 * median);
     Some(usual.min(valley))
-}
-
-/// Those that hang together with the one, or all alike ones anywhere.
-pub fn switch_growing(app: &mut App) -> Vec<Job> {
-    let Some(bench) = app.bench_mut() else { return no_granule(app) };
-    bench.spread.grown = !bench.spread.grown;
-    let grown = bench.spread.grown;
-    app.say(if grown { "those that hang together with it" } else { "anywhere" });
-    Vec::new()
 }

@@ -1,8 +1,10 @@
 //! The state of the Spread.
 
 use std::borrow::Cow;
+use std::collections::BTreeMap;
+use std::sync::Arc;
 
-use crate::review::Measure;
+use crate::review::{Measure, Measured};
 use crate::screening::{Screened, Sense, Threshold, Way, proposed_threshold, usual_range};
 use crate::ui::bench::Bench;
 
@@ -23,10 +25,44 @@ pub enum Source {
 pub struct Alike {
     /// The one.
     pub footprint: usize,
-    /// By what they were compared.
-    pub measure: Measure,
-    /// One number per footprint.
+    /// All spectra of the granule, as they are compared.
+    pub measured: Arc<Measured>,
+    /// How far each is from it.
     pub values: Vec<f64>,
+    /// The same in other granules, by their entries in the Tray, as far as they were compared.
+    pub elsewhere: BTreeMap<usize, Vec<f64>>,
+}
+
+impl Alike {
+    /// Of compared spectra, how far they are from one of them.
+    ///
+    /// # Errors
+    /// Too much of that one is missing.
+    pub fn of(measured: Arc<Measured>, footprint: usize) -> Result<Alike, String> {
+        let here = measured.of(footprint);
+        if measured.yardstick().far(here, here).is_nan() {
+            return Err("too little of this spectrum is there to compare it".to_owned());
+        }
+        let values = measured.far_from(here);
+        Ok(Alike { footprint, measured, values, elsewhere: BTreeMap::new() })
+    }
+
+    /// By what they were compared.
+    pub fn measure(&self) -> Measure {
+        self.measured.yardstick().measure()
+    }
+}
+
+/// How far one goes from a spectrum to those that are like it.
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]
+pub enum Reach {
+    /// To those that hang together with it.
+    #[default]
+    Grown,
+    /// Anywhere in the granule.
+    Here,
+    /// Anywhere in the granules of the Tray.
+    Tray,
 }
 
 /// The Spread of a granule.
@@ -36,8 +72,8 @@ pub struct Spread {
     pub source: Source,
     /// How far the spectra are from one of them, once that was asked for.
     pub alike: Option<Alike>,
-    /// Only footprints that hang together with that one are meant.
-    pub grown: bool,
+    /// How far from that one those that are meant may lie.
+    pub reach: Reach,
     /// A second layer, which goes upwards.
     pub against: Option<Against>,
     /// The threshold, or the place across that the keys move.
@@ -97,7 +133,7 @@ impl Bench {
     pub fn spread_name(&self) -> String {
         if let Some(alike) = self.spread_alike() {
             let place = self.position_words(alike.footprint);
-            return format!("{} from {place}", alike.measure.words());
+            return format!("{} from {place}", alike.measure().words());
         }
         match self.spread_test() {
             None => self.layer.text.clone(),
@@ -114,7 +150,7 @@ impl Bench {
     /// The unit of the values.
     pub fn spread_unit(&self) -> &str {
         match self.spread_alike() {
-            Some(alike) => alike.measure.unit(),
+            Some(alike) => alike.measure().unit(),
             None if self.spread_test().is_some() => "",
             None => &self.layer.unit,
         }

@@ -19,12 +19,16 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         (pending, Some(_)) => facts.push((format!("{pending} NOT WRITTEN"), Tone::Bad)),
         (pending, None) => facts.push((format!("{pending} pending"), Tone::Warning)),
     }
+    if let Some(across) = &app.across {
+        facts.push((format!("{}, Esc ends it", across.words()), Tone::Faint));
+    }
     let Some(bench) = app.bench() else { return facts };
     if bench.selecting.is_on() {
         facts.push((selected(bench), Tone::Accent));
     }
     if bench.awaited.screen != 0 {
-        facts.push(("tests running, Esc ends them".to_owned(), Tone::Faint));
+        let percent = (100.0 * bench.tests.cancel.share()).floor();
+        facts.push((format!("tests {percent:.0} %, Esc ends them"), Tone::Faint));
     }
     if let RecordState::Open(record) = &bench.record {
         if app.pending() == 0 && record.decisions().iter().any(|one| one.by_person()) {
@@ -52,7 +56,7 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
 
 /// How many footprints the next decision is about, and how what is being drawn changes that.
 fn selected(bench: &Bench) -> String {
-    let count = bench.selection().footprints.len();
+    let count = bench.selection().count();
     match (bench.selecting.kept(), bench.shape_selection()) {
         (Some(kept), Some(shape)) => {
             let (kept, shape) = (kept.footprints.len(), shape.footprints.len());

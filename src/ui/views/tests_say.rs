@@ -35,7 +35,10 @@ pub fn tests_say(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
 fn not_yet(bench: &Bench) -> EvidenceRow {
     let (words, tone) = match &bench.tests.problem {
         Some(why) => (format!("the tests could not run: {why}"), Tone::Bad),
-        None if bench.awaited.screen != 0 => ("the tests are running…".to_owned(), Tone::Faint),
+        None if bench.awaited.screen != 0 => {
+            let percent = (100.0 * bench.tests.cancel.share()).floor();
+            (format!("the tests are running: {percent:.0} %"), Tone::Faint)
+        }
         None if bench.filling.done => ("no tests have run".to_owned(), Tone::Faint),
         None => ("the tests run once all is read".to_owned(), Tone::Faint),
     };

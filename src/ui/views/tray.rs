@@ -1,5 +1,7 @@
 //! What the Tray is drawn from.
 
+use std::collections::BTreeMap;
+
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 
@@ -8,6 +10,8 @@ use crate::tray::Entry;
 use crate::ui::app::{App, Table};
 use crate::ui::panes::Pane;
 use crate::ui::panes::tray::{self, TrayRow, TrayShares, TrayState, TrayView};
+use crate::ui::selecting::Shape;
+use crate::ui::spreading::Reach;
 
 /// Draws the Tray.
 pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
@@ -35,10 +39,29 @@ fn tray_rows(app: &App) -> Vec<TrayRow> {
         _ => None,
     };
     let entries = app.tray.entries().iter().enumerate();
-    entries.map(|(number, entry)| row(entry, opening == Some(number))).collect()
+    let alike = alike(app);
+    entries
+        .map(|(number, entry)| {
+            let note = alike.get(&number).map(|count| format!("{count} alike"));
+            row(entry, opening == Some(number), note.unwrap_or_default())
+        })
+        .collect()
 }
 
-fn row(entry: &Entry, opening: bool) -> TrayRow {
+/// While spectra are sought in the whole Tray: how many there are in each granule.
+fn alike(app: &App) -> BTreeMap<usize, usize> {
+    let Some(bench) = app.bench() else { return BTreeMap::new() };
+    let Some(alike) = bench.spread_alike() else { return BTreeMap::new() };
+    if bench.spread.reach != Reach::Tray || bench.selecting.shape != Some(Shape::Threshold) {
+        return BTreeMap::new();
+    }
+    let selection = bench.selection();
+    let count = |entry: &usize| selection.elsewhere.get(entry).map_or(0, |set| set.len());
+    let elsewhere = alike.elsewhere.keys().map(|entry| (*entry, count(entry)));
+    elsewhere.chain([(bench.entry, selection.footprints.len())]).collect()
+}
+
+fn row(entry: &Entry, opening: bool, note: String) -> TrayRow {
     let in_doubt = entry.standing.as_ref().and_then(|standing| standing.in_doubt);
     let counts = entry.standing.as_ref().and_then(|standing| standing.counts.as_ref());
     let shares = counts.filter(|counts| counts.footprints > 0).map(|counts| {
@@ -50,7 +73,7 @@ fn row(entry: &Entry, opening: bool) -> TrayRow {
             in_doubt: in_doubt.map(share),
         }
     });
-    TrayRow { state: state(entry, opening), name: entry.name.clone(), shares }
+    TrayRow { state: state(entry, opening), name: entry.name.clone(), shares, note }
 }
 
 fn state(entry: &Entry, opening: bool) -> TrayState {
