@@ -7,7 +7,9 @@ use indicatif::{ProgressBar, ProgressStyle};
 
 use super::Exit;
 use super::exit::UsageError;
-use crate::synth::{DEFAULT_SEED, Recipe, SceneName, Shape, make_granule};
+use crate::synth::{
+    Calculation, DEFAULT_SEED, Recipe, SceneName, Shape, make_calculated, make_granule,
+};
 use crate::system::Cancel;
 
 /// What was typed.
@@ -32,6 +34,10 @@ pub struct Arguments {
     /// Plant a defect of every kind, labelled in the truth, in place of those of the scene.
     #[arg(long)]
     faulty: bool,
+    /// Write beside each granule what a model calculates for its footprints under clear sky, with a known
+    /// bias: exact knows air and ground, model is off as short forecasts are.
+    #[arg(long, value_name = "KIND")]
+    calculated: Option<String>,
     /// Replace files that are there already.
     #[arg(long)]
     force: bool,
@@ -72,12 +78,31 @@ fn scenes(names: &[String]) -> anyhow::Result<Vec<SceneName>> {
     Ok(SceneName::ALL.into_iter().filter(is_named).collect())
 }
 
+/// A granule, and what is calculated for it.
+struct Planned {
+    recipe: Recipe,
+    path: PathBuf,
+    calculated: Option<(Calculation, PathBuf)>,
+}
+
+impl Planned {
+    fn paths(&self) -> impl Iterator<Item = &PathBuf> {
+        std::iter::once(&self.path).chain(self.calculated.iter().map(|(_, path)| path))
+    }
+}
+
+fn calculation(text: &str) -> anyhow::Result<Calculation> {
+    let wrong = || UsageError(format!("--calculated: {text:?} is no kind: write exact or model"));
+    Ok(Calculation::parse(text).ok_or_else(wrong)?)
+}
+
 /// What the arguments mean: recipes and where they go.
-fn plan(arguments: &Arguments) -> anyhow::Result<Vec<(Recipe, PathBuf)>> {
+fn plan(arguments: &Arguments) -> anyhow::Result<Vec<Planned>> {
+    let calculated = arguments.calculated.as_deref().map(calculation).transpose()?;
     let shape =
         Shape::parse(&arguments.shape).map_err(|error| UsageError(format!("--shape: {error}")))?;
     let scenes = scenes(&arguments.scene)?;
-    let planned: Vec<(Recipe, PathBuf)> = scenes
+    let planned: Vec<Planned> = scenes
         .into_iter()
         .map(|scene| Recipe {
             scene,
@@ -86,10 +111,15 @@ fn plan(arguments: &Arguments) -> anyhow::Result<Vec<(Recipe, PathBuf)>> {
             perturbed: arguments.perturbed,
             faulty: arguments.faulty,
         })
-        .map(|recipe| (recipe, arguments.out.join(recipe.file_name())))
+        .map(|recipe| Planned {
+            recipe,
+            path: arguments.out.join(recipe.file_name()),
+            calculated: calculated
+                .map(|kind| (kind, arguments.out.join(recipe.calculated_file_name()))),
+        })
         .collect();
     if !arguments.force
-        && let Some((_, there)) = planned.iter().find(|(_, path)| path.exists())
+        && let Some(there) = planned.iter().flat_map(Planned::paths).find(|path| path.exists())
     {
         let there = there.display();
         anyhow::bail!("{there} is there already; --force replaces it (nothing was written)");
@@ -104,12 +134,17 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         anyhow::anyhow!("cannot make the folder {}: {error}", arguments.out.display())
     })?;
     let cancel = Cancel::new();
-    for (recipe, path) in planned {
+    for Planned { recipe, path, calculated } in planned {
         let name = recipe.file_name();
         let progress = Progress::new(&name);
         make_granule(recipe, &path, &cancel, &mut |done, all| progress.at(done, all))?;
         progress.end();
         writeln!(std::io::stdout(), "{}", path.display())?;
+        if let Some((kind, path)) = calculated {
+            eprintln!("calculating {}", recipe.calculated_file_name());
+            make_calculated(recipe, kind, &path, &cancel)?;
+            writeln!(std::io::stdout(), "{}", path.display())?;
+        }
     }
     Ok(Exit::Done)
 }

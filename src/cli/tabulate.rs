@@ -12,7 +12,7 @@ use super::rules::rulebook_or_builtin;
 use super::table::{Form, Heading, write_rows};
 use crate::granule::{Granule, Opening, ProblemKind};
 use crate::layers::{Expression, GranuleNames, Judgements, Kept, Layer, LayerError, evaluate_all};
-use crate::screening::{CloudHeight, Rulebook, screen};
+use crate::screening::{CloudHeight, Departures, RankedChannels, Rulebook, screen};
 use crate::system::{Cancel, WriteError, clean_text, write_whole};
 
 /// What was typed.
@@ -199,7 +199,13 @@ fn layers(plan: &Plan, granule: &Granule) -> anyhow::Result<Vec<Layer>> {
     let expressions: Vec<&Expression> = plan.layers.iter().collect();
     let kept = Kept::default();
     let cancel = Cancel::new();
-    let names = || GranuleNames::new(granule, &cube).keeping(&kept).with_retrieval(&*plan.heights);
+    let names = || {
+        GranuleNames::new(granule, &cube)
+            .keeping(&kept)
+            .with_retrieval(&*plan.heights)
+            .with_retrieval(Departures::shared())
+            .with_retrieval(RankedChannels::shared())
+    };
     let screened = match &plan.rulebook {
         Some(rulebook) => Some(names().lend_all(&cancel, |names| screen(rulebook, names))?),
         None => None,

@@ -3,7 +3,7 @@
 use std::ops::Range;
 use std::path::Path;
 
-use super::band::{Band, Channel};
+use super::band::Band;
 use super::error::GranuleError;
 use super::footprints::FootprintGrid;
 use super::geolocation::{Geolocation, Origin, Over};
@@ -164,26 +164,6 @@ impl Granule {
         };
         let places: Vec<Option<usize>> = footprints.map(place).collect();
         calculated.at(reader, &self.bands[band], grid.row_length(), &places).map(Some)
-    }
-
-    /// One channel of the calculated clear-sky spectra over all footprints, as
-    /// [`Granule::calculated_clear`] has it.
-    ///
-    /// # Errors
-    /// The file cannot be read.
-    pub fn calculated_channel(&self, channel: &Channel) -> Result<Option<Vec<f64>>, GranuleError> {
-        let channels = self.bands[channel.band].channels();
-        // About 16 MB at a time.
-        let block = ((1 << 21) / channels.max(1)).max(self.footprints.row_length()).max(1);
-        let mut values = Vec::with_capacity(self.footprints.count());
-        for start in (0..self.footprints.count()).step_by(block) {
-            let footprints = start..(start + block).min(self.footprints.count());
-            let Some(spectra) = self.calculated_clear(channel.band, footprints)? else {
-                return Ok(None);
-            };
-            values.extend(spectra.iter().skip(channel.index).step_by(channels));
-        }
-        Ok(Some(values))
     }
 
     /// The layout file that it was read with, if there was one.

@@ -158,6 +158,26 @@ impl<'g> GranuleNames<'g> {
         }
     }
 
+    /// Channel by channel what calculated spectra, one after another, have of some channels of a band.
+    fn pick(&self, channels: &[Channel], spectra: &[f64], out: &mut [f64]) {
+        let Some(band) = channels.first().and_then(|one| self.granule.bands().get(one.band)) else {
+            return;
+        };
+        let whole = band.channels().max(1);
+        let footprints = (spectra.len() / whole).max(1);
+        for (channel, out) in channels.iter().zip(out.chunks_mut(footprints)) {
+            let stored = self.stores_temperature(channel);
+            for (spectrum, out) in spectra.chunks(whole).zip(out) {
+                *out = match stored {
+                    true => spectrum[channel.index],
+                    false => {
+                        brightness_temperature_or_nan(channel.wavenumber, spectrum[channel.index])
+                    }
+                };
+            }
+        }
+    }
+
     fn leave_out(&self, footprints: &Range<usize>, out: &mut [f64]) {
         let Some(left_out) = self.left_out.get(footprints.clone()) else { return };
         for column in out.chunks_mut(footprints.len().max(1)) {
@@ -206,22 +226,38 @@ impl Names for GranuleNames<'_> {
         self.whole.as_ref().map(|_| self.granule.footprints_at_once())
     }
 
-    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError> {
-        let stored = self.stores_temperature(channel);
-        let kelvin = |value: f64| match stored {
-            true => value,
-            false => brightness_temperature_or_nan(channel.wavenumber, value),
-        };
-        match self.granule.calculated_channel(channel) {
-            Ok(Some(values)) => Ok(Values {
-                values: values.into_iter().map(kelvin).collect(),
-                unit: LayerUnit::Kelvin,
-            }),
-            Ok(None) => Err(NameError::NotInFile(
+    fn calculates(&self, channel: &Channel) -> Result<(), NameError> {
+        match self.granule.calculated(channel.band) {
+            Some(_) => Ok(()),
+            None => Err(NameError::NotInFile(
                 "calculated clear-sky spectra of this band (--with FILE lends them)".to_owned(),
             )),
-            Err(error) => Err(NameError::Unreadable(error.to_string())),
         }
+    }
+
+    fn clear_temperatures(
+        &self,
+        channels: &[Channel],
+        footprints: Range<usize>,
+        out: &mut [f64],
+    ) -> Result<(), NameError> {
+        let mut out = out;
+        for of_band in channels.chunk_by(|one, next| one.band == next.band) {
+            let (part, rest) = out.split_at_mut(of_band.len() * footprints.len());
+            let band = of_band[0].band;
+            let spectra = match &self.whole {
+                None => self.granule.calculated_clear(band, footprints.clone()),
+                Some(whole) => Ok(whole.calculated_over(self.granule, band, footprints.clone())),
+            };
+            match spectra {
+                Ok(Some(spectra)) => self.pick(of_band, &spectra, part),
+                Ok(None) => {}
+                Err(error) => return Err(NameError::Unreadable(error.to_string())),
+            }
+            self.leave_out(&footprints, part);
+            out = rest;
+        }
+        Ok(())
     }
 
     fn is_left_out(&self, footprint: usize) -> bool {

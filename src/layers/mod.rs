@@ -26,7 +26,7 @@ pub use indices::INDICES;
 pub use kept::Kept;
 pub use names::{Judgements, NameError, Names, Values};
 pub use neighbours::Neighbours;
-pub use retrieval::{Input, Retrieval};
+pub use retrieval::{Input, Retrieval, Retrieved};
 pub use syntax::{
     DERIVED_NAMES, Expression, ExpressionError, FRIENDLY_NAMES, FriendlyName, Judgement, Mistake,
     functions,

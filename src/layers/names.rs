@@ -64,6 +64,9 @@ pub enum NameError {
     /// No tests have been run, or they are running still.
     #[error("no screening tests have been run here that could tell {0}")]
     NotJudged(&'static str),
+    /// A function of what no method works out here.
+    #[error("{0} is not worked out here")]
+    NotWorkedOut(&'static str),
     /// The file could not be read.
     #[error("{0}")]
     Unreadable(String),
@@ -116,11 +119,23 @@ pub trait Names: Sync {
         None
     }
 
-    /// The brightness temperature, K, that a model calculated for the channel under clear sky.
+    /// Whether a model calculated the channel's clear-sky spectra.
     ///
     /// # Errors
-    /// There are no calculated spectra, or they can't be read.
-    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError>;
+    /// It did not; the error says how to come by them.
+    fn calculates(&self, channel: &Channel) -> Result<(), NameError>;
+
+    /// The brightness temperatures, K, that a model calculated for some channels under clear sky, in
+    /// the order of [`Self::radiances`]; asked only of channels that it [calculates](Self::calculates).
+    ///
+    /// # Errors
+    /// They can't be read; `out` is left as it was where that is so.
+    fn clear_temperatures(
+        &self,
+        channels: &[Channel],
+        footprints: Range<usize>,
+        out: &mut [f64],
+    ) -> Result<(), NameError>;
 
     /// Whether a footprint is left out: its numbers from the spectrum are missing, and no test speaks
     /// about it.

@@ -39,10 +39,34 @@ impl<'g> WholeGranule<'g> {
         };
         if let Err(error) = read {
             out.fill(f64::NAN);
-            let mut first = self.first();
-            if first.as_ref().is_none_or(|(before, _)| start < *before) {
-                *first = Some((start, error));
-            }
+            self.note(start, error);
+        }
+    }
+
+    /// The calculated spectra of a band over some footprints; nothing where there are none, where they
+    /// can't be read, and behind the first place where that was so.
+    pub fn calculated_over(
+        &self,
+        granule: &Granule,
+        band: usize,
+        footprints: Range<usize>,
+    ) -> Option<Vec<f64>> {
+        let start = footprints.start;
+        let read = match self.is_lost_before(start) {
+            true => return None,
+            false if self.cancel.is_cancelled() => Err(GranuleError::Cancelled),
+            false => granule.calculated_clear(band, footprints),
+        };
+        read.unwrap_or_else(|error| {
+            self.note(start, error);
+            None
+        })
+    }
+
+    fn note(&self, start: usize, error: GranuleError) {
+        let mut first = self.first();
+        if first.as_ref().is_none_or(|(before, _)| start < *before) {
+            *first = Some((start, error));
         }
     }
 

@@ -13,7 +13,7 @@ use crate::layers::{
 };
 use crate::screening::health::examine;
 use crate::screening::unusual::SavedBases;
-use crate::screening::{CloudHeight, Rulebook, Screened, screen};
+use crate::screening::{CloudHeight, Departures, RankedChannels, Rulebook, Screened, screen};
 use crate::system::Cancel;
 
 /// A granule on the table. Many threads may look at it at once.
@@ -89,7 +89,10 @@ impl Review {
     /// Its names for layer expressions.
     pub fn names(&self) -> GranuleNames<'_> {
         let names = GranuleNames::new(&self.granule, &self.cube).keeping(&self.kept);
-        names.with_retrieval(&*self.heights)
+        names
+            .with_retrieval(&*self.heights)
+            .with_retrieval(Departures::shared())
+            .with_retrieval(RankedChannels::shared())
     }
 
     /// The same for tests, which do not look at what the producer rejects.

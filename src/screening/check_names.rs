@@ -4,6 +4,7 @@ use std::collections::BTreeMap;
 use std::ops::Range;
 
 use super::cloud_height::CLOUD_HEIGHT_NAMES;
+use super::departures::RANKED_NAMES;
 use super::read_rulebook::{Plain, meant};
 use super::table_reader::Notebook;
 use super::threshold::Threshold;
@@ -68,7 +69,8 @@ fn new_word(notebook: &mut Notebook, span: &Range<usize>, name: &str) {
 /// Names of the granule: fields, what follows from them, what is retrieved.
 fn fields() -> impl Iterator<Item = &'static str> {
     let fields = FRIENDLY_NAMES.iter().chain(DERIVED_NAMES).map(|field| field.name);
-    fields.chain(CLOUD_HEIGHT_NAMES.iter().map(|(name, _)| *name))
+    let retrieved = CLOUD_HEIGHT_NAMES.iter().chain(&RANKED_NAMES);
+    fields.chain(retrieved.map(|(name, _)| *name))
 }
 
 fn known_words(

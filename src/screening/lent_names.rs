@@ -43,8 +43,17 @@ impl Names for LentNames<'_> {
         self.names.footprints_at_once()
     }
 
-    fn clear_temperature(&self, channel: &Channel) -> Result<Values, NameError> {
-        self.names.clear_temperature(channel)
+    fn calculates(&self, channel: &Channel) -> Result<(), NameError> {
+        self.names.calculates(channel)
+    }
+
+    fn clear_temperatures(
+        &self,
+        channels: &[Channel],
+        footprints: Range<usize>,
+        out: &mut [f64],
+    ) -> Result<(), NameError> {
+        self.names.clear_temperatures(channels, footprints, out)
     }
 
     fn is_left_out(&self, footprint: usize) -> bool {

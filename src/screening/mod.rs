@@ -14,6 +14,7 @@ mod change_threshold;
 mod check_names;
 mod cloud_height;
 mod combine;
+mod departures;
 mod evidence;
 pub mod health;
 mod histogram;
@@ -43,6 +44,7 @@ mod worked_tests;
 pub use builtin::{BUILTIN_TEXT, builtin};
 pub use change_threshold::with_threshold;
 pub use cloud_height::{CLOUD_HEIGHT_NAMES, CloudHeight, Profile, ProfileError};
+pub use departures::{Departures, RANKED_NAMES, RankedChannels};
 pub use evidence::{
     Evidence, FamilyVoice, FlagEvidence, HealthEvidence, Reconstruction, TestEvidence,
 };

@@ -63,7 +63,25 @@ pub(super) fn data_name(band: &Band) -> String {
     named(stem, band)
 }
 
-const RADIANCE_UNIT: &str = "mW m-2 sr-1 (cm-1)-1";
+pub(super) const RADIANCE_UNIT: &str = "mW m-2 sr-1 (cm-1)-1";
+
+/// The spectral dimension of a band, and its axis.
+pub(super) fn define_axis(
+    file: &mut NetcdfWriter,
+    maker: &Maker,
+    band: &Band,
+) -> Result<(), WriterError> {
+    let channel = named("channel", band);
+    file.dimension(&channel, band.wavenumbers.len())?;
+    let unit = if maker.instrument.axis_per_metre { "m-1" } else { "cm-1" };
+    file.variable(
+        &VariableDraft::new(named("wavenumber", band), ValueKind::F64, &[&channel])
+            .attribute("standard_name", "sensor_band_central_radiation_wavenumber")
+            .attribute("long_name", "wavenumber of the channel's middle")
+            .attribute("units", unit)
+            .deflate(5),
+    )
+}
 
 pub(super) fn define_band(
     file: &mut NetcdfWriter,
@@ -71,17 +89,9 @@ pub(super) fn define_band(
     layout: &Layout,
     band: &Band,
 ) -> Result<(), WriterError> {
+    define_axis(file, maker, band)?;
     let channel = named("channel", band);
     let wavenumber = named("wavenumber", band);
-    file.dimension(&channel, band.wavenumbers.len())?;
-    let unit = if maker.instrument.axis_per_metre { "m-1" } else { "cm-1" };
-    file.variable(
-        &VariableDraft::new(wavenumber.clone(), ValueKind::F64, &[&channel])
-            .attribute("standard_name", "sensor_band_central_radiation_wavenumber")
-            .attribute("long_name", "wavenumber of the channel's middle")
-            .attribute("units", unit)
-            .deflate(5),
-    )?;
     let mut dimensions = layout.names.clone();
     dimensions.push(&channel);
     let mut chunks = layout.lengths.clone();

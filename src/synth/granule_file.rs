@@ -54,7 +54,7 @@ pub(super) struct Layout {
 const CHUNK_VALUES: usize = 300_000;
 
 impl Layout {
-    fn new(maker: &Maker) -> Layout {
+    pub(super) fn new(maker: &Maker) -> Layout {
         let swath = &maker.swath;
         let mut names = vec!["scan_line", "position"];
         let mut lengths = vec![swath.lines, swath.positions];

@@ -4,6 +4,7 @@
 //!
 //! **Never** is used by what it tests.
 
+mod calculated;
 mod defects;
 mod faulty;
 mod field;
@@ -25,6 +26,7 @@ mod swath;
 mod truth;
 mod typical_noise;
 
+pub use calculated::{Calculation, make_calculated};
 pub use granule_file::{ContentError, SynthError, make_granule};
 pub use recipe::{DEFAULT_SEED, Recipe};
 pub use scenes::SceneName;

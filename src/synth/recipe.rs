@@ -44,6 +44,11 @@ impl Recipe {
         format!("synthetic_brindle_{scene}{shape}{seed}{perturbed}{faulty}.nc")
     }
 
+    /// Name of the file of what a model calculates for the granule.
+    pub fn calculated_file_name(&self) -> String {
+        format!("{}_calculated.nc", self.file_name().trim_end_matches(".nc"))
+    }
+
     /// The command that follows this recipe.
     pub fn command(&self) -> String {
         let perturbed =

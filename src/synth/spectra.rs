@@ -52,6 +52,11 @@ impl Maker {
     /// Draws the scene and computes the columns of air: the part that takes time before the first
     /// scan line.
     pub fn new(recipe: Recipe) -> Maker {
+        Maker::with_air(recipe, |changes| changes)
+    }
+
+    /// The same with other air than the scene's.
+    pub fn with_air(recipe: Recipe, other: impl Fn(Changes) -> Changes) -> Maker {
         let (instrument, swath, defects) = recipe.instrument();
         let scene = recipe.scene.scene(recipe.seed);
         let setting = recipe.setting();
@@ -76,8 +81,8 @@ impl Maker {
             cloud_heights: CLOUD_HEIGHTS.to_vec(),
         };
         let air = |(standard, changes): (Standard, Changes)| match &perturbation {
-            Some(perturbation) => Atmosphere::new(standard, &perturbation.of_air(&changes)),
-            None => Atmosphere::new(standard, &changes),
+            Some(perturbation) => Atmosphere::new(standard, &other(perturbation.of_air(&changes))),
+            None => Atmosphere::new(standard, &other(changes)),
         };
         let airs = scene.airs().into_iter().map(air).collect();
         let scenery = Scenery::new(airs, &channels, view);
@@ -137,6 +142,15 @@ impl Maker {
                 made
             })
             .collect()
+    }
+
+    /// A footprint's spectrum without cloud, dust, ash, noise and defects, all bands one after another,
+    /// over ground that is warmer by some K.
+    pub fn clear_spectrum(&self, footprint: usize, warmer: f64) -> Vec<f32> {
+        let mut clear = self.look(footprint).0.footprint;
+        clear.covers.clear();
+        clear.surface_temperature += warmer;
+        self.scenery.radiances(&clear)
     }
 
     fn footprint(&self, footprint: usize) -> Made {

@@ -11,7 +11,7 @@ use super::program::Source;
 use crate::granule::Channel;
 use crate::layers::names::Names;
 use crate::layers::neighbours::{cluster, neighbourhood};
-use crate::layers::retrieval::Retrieval;
+use crate::layers::retrieval::{Retrieval, Retrieved};
 use crate::layers::syntax::{Around, Expression};
 
 /// The numbers of one expression.
@@ -54,13 +54,24 @@ pub fn channels_needed(expressions: &[&Expression], names: &dyn Names) -> Vec<Ch
 struct Work {
     leaves: Vec<Column>,
     steps: Vec<Vec<f64>>,
+    /// Each retrieval runs once for a channel, however many of its results are asked for.
+    retrieved: BTreeMap<Run, Retrieved>,
+}
+
+/// Which retrieval, and for which channel by band and index.
+type Run = (usize, Option<(usize, usize)>);
+
+fn run_of(retrieval: usize, channel: Option<&Channel>) -> Run {
+    (retrieval, channel.map(|channel| (channel.band, channel.index)))
 }
 
 impl Work {
     fn done(plan: &Plan, names: &dyn Names) -> Self {
-        let mut work = Self { leaves: gather(&plan.leaves, names), steps: Vec::new() };
-        // Each retrieval runs once, however many of its results are asked for.
-        let mut retrieved: BTreeMap<usize, Vec<Vec<f64>>> = BTreeMap::new();
+        let mut work = Self {
+            leaves: gather(&plan.leaves, names),
+            steps: Vec::new(),
+            retrieved: BTreeMap::new(),
+        };
         for step in &plan.steps {
             let column = match step {
                 Step::Pointwise(program) => {
@@ -72,9 +83,15 @@ impl Work {
                 Step::Neighbourhood(statistic, Around::Cluster, source) => {
                     cluster(*statistic, work.column(*source), names.cluster())
                 }
-                Step::Retrieval { retrieval, inputs, output } => {
-                    let run = || work.retrieve(names.retrievals()[*retrieval], inputs, names);
-                    retrieved.entry(*retrieval).or_insert_with(run)[*output].clone()
+                Step::Retrieval { retrieval, channel, inputs, output } => {
+                    let run = run_of(*retrieval, channel.as_ref());
+                    if !work.retrieved.contains_key(&run) {
+                        let lent = names.retrievals()[*retrieval];
+                        let found = work.retrieve(lent, channel.as_ref(), inputs, names);
+                        work.retrieved.insert(run, found);
+                    }
+                    let found = work.retrieved.get(&run);
+                    found.and_then(|found| found.columns.get(*output)).cloned().unwrap_or_default()
                 }
             };
             work.steps.push(column);
@@ -85,12 +102,13 @@ impl Work {
     fn retrieve(
         &self,
         retrieval: &dyn Retrieval,
+        channel: Option<&Channel>,
         inputs: &[Option<Source>],
         names: &dyn Names,
-    ) -> Vec<Vec<f64>> {
+    ) -> Retrieved {
         let inputs: Vec<Option<&[f64]>> =
             inputs.iter().map(|source| source.map(|source| self.column(source))).collect();
-        retrieval.run(names.lengths(), &inputs)
+        retrieval.run(names, &inputs, channel)
     }
 
     fn layer(
@@ -107,8 +125,24 @@ impl Work {
             channels: single_channels(&plan.leaves, output),
             bands: bands(&plan.leaves, output),
             not_positive: not_positive(&self.leaves, output),
-            notes: notes(&plan.leaves, &self.leaves, output, names),
+            notes: self.notes(output, plan, names),
         }
+    }
+
+    fn notes(&self, output: &Output, plan: &Plan, names: &dyn Names) -> Vec<String> {
+        let mut all = notes(&plan.leaves, &self.leaves, output, names);
+        for step in &output.retrieved {
+            let Some(Step::Retrieval { retrieval, channel, .. }) = plan.steps.get(*step) else {
+                continue;
+            };
+            let found = self.retrieved.get(&run_of(*retrieval, channel.as_ref()));
+            for note in found.into_iter().flat_map(|found| &found.notes) {
+                if !all.contains(note) {
+                    all.push(note.clone());
+                }
+            }
+        }
+        all
     }
 
     fn column(&self, source: Source) -> &[f64] {
@@ -151,6 +185,9 @@ fn notes(leaves: &[Leaf], columns: &[Column], output: &Output, names: &dyn Names
     notes.extend(used().filter_map(|(leaf, _)| leaf.note()));
     let footprints = names.footprints();
     for (leaf, column) in used() {
+        if !column.unread.is_empty() {
+            notes.push(column.unread.clone());
+        }
         let place = place(leaf);
         if !column.not_positive.is_empty() {
             notes.push(format!(

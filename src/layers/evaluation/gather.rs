@@ -25,6 +25,8 @@ pub struct Column {
     pub not_positive: Vec<usize>,
     /// Footprints for which some of an interval's channels were missing.
     pub partial: usize,
+    /// Why some of it could not be read; empty where all could.
+    pub unread: String,
 }
 
 impl Column {
@@ -32,6 +34,9 @@ impl Column {
         self.values.extend_from_slice(&block.values);
         self.not_positive.extend_from_slice(&block.not_positive);
         self.partial += block.partial;
+        if self.unread.is_empty() {
+            self.unread.clone_from(&block.unread);
+        }
     }
 }
 
@@ -75,6 +80,7 @@ fn join(leaves: usize, parts: impl Iterator<Item = Vec<Column>>) -> Vec<Column> 
 struct Wanted {
     radiances: Vec<Channel>,
     temperatures: Vec<Channel>,
+    calculated: Vec<Channel>,
 }
 
 /// The numbers of one block.
@@ -85,6 +91,9 @@ struct Block<'w> {
     length: usize,
     radiances: Vec<f64>,
     temperatures: Vec<f64>,
+    calculated: Vec<f64>,
+    /// Why the calculated numbers could not be read; empty where they could.
+    unread: String,
 }
 
 impl Wanted {
@@ -94,11 +103,19 @@ impl Wanted {
                 if names.stores_temperature(channel))
         };
         let (exact, other): (Vec<&Leaf>, Vec<&Leaf>) = leaves.iter().partition(exact);
-        Self { radiances: unique(&other), temperatures: unique(&exact) }
+        let calculated = leaves.iter().filter_map(|leaf| match leaf {
+            Leaf::Calculated(channel) => Some(*channel),
+            _ => None,
+        });
+        Self {
+            radiances: unique(measured(&other)),
+            temperatures: unique(measured(&exact)),
+            calculated: unique(calculated),
+        }
     }
 
     fn len(&self) -> usize {
-        self.radiances.len() + self.temperatures.len()
+        self.radiances.len() + self.temperatures.len() + self.calculated.len()
     }
 
     fn block(&self, leaves: &[Leaf], names: &dyn Names, footprints: Range<usize>) -> Vec<Column> {
@@ -111,16 +128,34 @@ impl Wanted {
         if !temperatures.is_empty() {
             names.temperatures(&self.temperatures, footprints.clone(), &mut temperatures);
         }
-        let block =
-            Block { wanted: self, start: footprints.start, length, radiances, temperatures };
+        let mut calculated = vec![f64::NAN; self.calculated.len() * length];
+        let mut unread = String::new();
+        if !calculated.is_empty()
+            && let Err(error) =
+                names.clear_temperatures(&self.calculated, footprints.clone(), &mut calculated)
+        {
+            unread = error.to_string();
+        }
+        let block = Block {
+            wanted: self,
+            start: footprints.start,
+            length,
+            radiances,
+            temperatures,
+            calculated,
+            unread,
+        };
         leaves.iter().map(|leaf| block.column(leaf, &footprints)).collect()
     }
 }
 
+fn measured<'l>(leaves: &'l [&Leaf]) -> impl Iterator<Item = Channel> + 'l {
+    leaves.iter().flat_map(|leaf| leaf.channels().iter().copied())
+}
+
 /// Channels in the order of the file, so that a reader goes through each spectrum once.
-fn unique(leaves: &[&Leaf]) -> Vec<Channel> {
-    let mut channels: Vec<Channel> =
-        leaves.iter().flat_map(|leaf| leaf.channels().iter().copied()).collect();
+fn unique(channels: impl Iterator<Item = Channel>) -> Vec<Channel> {
+    let mut channels: Vec<Channel> = channels.collect();
     channels.sort_by_key(place);
     channels.dedup_by_key(|channel| place(channel));
     channels
@@ -139,6 +174,15 @@ impl Block<'_> {
                 let mut values: Vec<f64> = values.iter().map(finite).collect();
                 values.resize(self.length, f64::NAN);
                 Column { values, ..Column::default() }
+            }
+            Leaf::Calculated(channel) => {
+                let values = part(&self.wanted.calculated, &self.calculated, channel);
+                let finite = |value: &f64| if value.is_finite() { *value } else { f64::NAN };
+                Column {
+                    values: values.unwrap_or_default().iter().map(finite).collect(),
+                    unread: self.unread.clone(),
+                    ..Column::default()
+                }
             }
             Leaf::Channel(Quantity::MissingShare, channel) => {
                 self.missing_share(std::slice::from_ref(channel))

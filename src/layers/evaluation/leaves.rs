@@ -22,17 +22,19 @@ pub enum Leaf {
         /// Width as typed, cm-1.
         width: f64,
     },
+    /// What a model calculated for one channel under clear sky.
+    Calculated(Channel),
     /// Values by name; the name as written.
     Named(String, Values),
 }
 
 impl Leaf {
-    /// The channels that it takes.
+    /// The measured channels that it takes.
     pub fn channels(&self) -> &[Channel] {
         match self {
             Self::Channel(_, channel) => std::slice::from_ref(channel),
             Self::Interval { channels, .. } => channels,
-            Self::Named(..) => &[],
+            Self::Calculated(_) | Self::Named(..) => &[],
         }
     }
 

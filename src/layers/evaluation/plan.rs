@@ -6,6 +6,7 @@ use super::definitions;
 use super::error::LayerError;
 use super::leaves::Leaf;
 use super::program::{Operation, Program, Source};
+use crate::granule::Channel;
 use crate::layers::names::{NameError, Names};
 use crate::layers::syntax::{
     Around, Expression, Function, Infix, Kind, Node, Prefix, Span, Statistic,
@@ -20,8 +21,13 @@ pub enum Step {
     Pointwise(Program),
     /// Over the footprints around each.
     Neighbourhood(Statistic, Around, Source),
-    /// A result of a retrieval: which of them, from which columns, which result.
-    Retrieval { retrieval: usize, inputs: Vec<Option<Source>>, output: usize },
+    /// A result of a retrieval: which of them, for which channel, from which columns, which result.
+    Retrieval {
+        retrieval: usize,
+        channel: Option<Channel>,
+        inputs: Vec<Option<Source>>,
+        output: usize,
+    },
 }
 
 /// Where an expression's numbers come out.
@@ -35,6 +41,8 @@ pub struct Output {
     pub leaves: Vec<usize>,
     /// Whether it looks at neighbours.
     pub neighbours: bool,
+    /// The steps of retrievals that it uses.
+    pub retrieved: Vec<usize>,
     /// What a reader should know about the expression itself.
     pub remarks: Vec<String>,
 }
@@ -83,6 +91,7 @@ pub struct Draft<'t> {
     program: Program,
     leaves: Vec<usize>,
     pub neighbours: bool,
+    pub retrieved: Vec<usize>,
     pub remarks: Vec<String>,
 }
 
@@ -112,8 +121,8 @@ impl<'n> Planner<'n> {
         match self.node(expression.tree(), &mut draft) {
             Ok(unit) => {
                 let source = self.column(std::mem::take(&mut draft.program));
-                let Draft { leaves, neighbours, remarks, .. } = draft;
-                Ok(Output { source, unit, leaves, neighbours, remarks })
+                let Draft { leaves, neighbours, retrieved, remarks, .. } = draft;
+                Ok(Output { source, unit, leaves, neighbours, retrieved, remarks })
             }
             Err(error) => {
                 // A definition that a retrieval needed stays, and so must what it is made from.
@@ -142,13 +151,7 @@ impl<'n> Planner<'n> {
                 self.values(node.to_string(), ask, &node.span, draft)
             }
             Kind::Spectral(quantity, place) => self.spectral(*quantity, place, &node.span, draft),
-            Kind::Calculated(place) => {
-                let clear = |names: &dyn Names| {
-                    let channel = names.channel_near(place.wavenumber())?;
-                    names.clear_temperature(&channel)
-                };
-                self.values(node.to_string(), clear, &node.span, draft)
-            }
+            Kind::Calculated(what, place) => self.calculated(*what, place, &node.span, draft),
             Kind::Planck(temperature, place) => {
                 self.node(temperature, draft)?;
                 draft.add(Operation::Planck(place.wavenumber()));
@@ -221,6 +224,7 @@ impl<'n> Planner<'n> {
         });
         draft.uses(&inner.leaves);
         draft.neighbours |= inner.neighbours || around == Around::Nine;
+        draft.retrieved.extend(inner.retrieved);
         draft.remarks.extend(inner.remarks);
         draft.add(Operation::Load(Source::Step(step)));
         Ok(match statistic {
@@ -245,6 +249,7 @@ impl<'t> Draft<'t> {
             program: Program::default(),
             leaves: Vec::new(),
             neighbours: false,
+            retrieved: Vec::new(),
             remarks: Vec::new(),
         }
     }

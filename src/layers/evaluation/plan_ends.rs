@@ -4,8 +4,10 @@ use super::error::LayerError;
 use super::leaves::Leaf;
 use super::plan::{Draft, Planner, Step};
 use super::program::{Operation, Source};
+use crate::granule::Channel;
 use crate::layers::names::{NameError, Names, Values};
-use crate::layers::syntax::{Quantity, Span, Where};
+use crate::layers::retrieval::Retrieval;
+use crate::layers::syntax::{Callable, OfCalculated, Place, Quantity, Span, Where, name_of};
 use crate::layers::unit::LayerUnit;
 
 impl Planner<'_> {
@@ -19,29 +21,65 @@ impl Planner<'_> {
             Some(Ok(output)) => {
                 draft.uses(&output.leaves);
                 draft.neighbours |= output.neighbours;
+                draft.retrieved.extend(&output.retrieved);
                 draft.remarks.extend(output.remarks.iter().cloned());
                 draft.add(Operation::Load(output.source));
                 Ok(output.unit)
             }
             Some(Err(error)) => Err(error.clone()),
-            None if self.retrieved(name).is_some() => self.retrieval(name, draft),
-            None => self.values(name.to_owned(), |names| names.named(name), span, draft),
+            None => match self.retrieved(|one| one.outputs(), name) {
+                Some(found) => self.retrieval(found, None, draft),
+                None => self.values(name.to_owned(), |names| names.named(name), span, draft),
+            },
+        }
+    }
+
+    /// What a model calculated for a channel, and what follows from it.
+    pub fn calculated(
+        &mut self,
+        what: OfCalculated,
+        place: &Place,
+        span: &Span,
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
+        let channel = self.names.channel_near(place.wavenumber());
+        let channel = channel.and_then(|channel| self.names.calculates(&channel).map(|()| channel));
+        let channel = channel.map_err(|error| LayerError::of_name(draft.text, span, &error))?;
+        if what == OfCalculated::Clear {
+            self.leaf(Leaf::Calculated(channel), draft);
+            return Ok(LayerUnit::Kelvin);
+        }
+        let name = name_of(Callable::Calculated(what));
+        match self.retrieved(|one| one.functions(), name) {
+            Some(found) => self.retrieval(found, Some(channel), draft),
+            None => {
+                let error = NameError::NotWorkedOut(name);
+                Err(LayerError::of_name(draft.text, span, &error))
+            }
         }
     }
 
     /// The retrieval that a name comes out of, and its place among the results.
-    fn retrieved(&self, name: &str) -> Option<(usize, usize)> {
+    fn retrieved(
+        &self,
+        results: fn(&dyn Retrieval) -> &[(&'static str, LayerUnit)],
+        name: &str,
+    ) -> Option<(usize, usize)> {
         self.names.retrievals().iter().enumerate().find_map(|(retrieval, one)| {
-            let output = one.outputs().iter().position(|(known, _)| *known == name)?;
+            let output = results(*one).iter().position(|(known, _)| *known == name)?;
             Some((retrieval, output))
         })
     }
 
-    fn retrieval(&mut self, name: &str, draft: &mut Draft<'_>) -> Result<LayerUnit, LayerError> {
-        let Some((retrieval, output)) = self.retrieved(name) else { return Ok(LayerUnit::Unknown) };
+    fn retrieval(
+        &mut self,
+        (retrieval, output): (usize, usize),
+        channel: Option<Channel>,
+        draft: &mut Draft<'_>,
+    ) -> Result<LayerUnit, LayerError> {
         let lent = self.names.retrievals()[retrieval];
         let mut inputs = Vec::new();
-        for input in lent.inputs() {
+        for input in lent.inputs(self.names, channel.as_ref()) {
             match self.output(&input.layer) {
                 Ok(found) => {
                     draft.uses(&found.leaves);
@@ -53,16 +91,17 @@ impl Planner<'_> {
             }
         }
         let known = self.steps.iter().position(|step| {
-            matches!(step, Step::Retrieval { retrieval: other, output: of, .. }
-                if (*other, *of) == (retrieval, output))
+            matches!(step, Step::Retrieval { retrieval: other, channel: at, output: of, .. }
+                if (*other, *at, *of) == (retrieval, channel, output))
         });
         let step = known.unwrap_or_else(|| {
-            self.steps.push(Step::Retrieval { retrieval, inputs, output });
+            self.steps.push(Step::Retrieval { retrieval, channel, inputs, output });
             self.steps.len() - 1
         });
-        draft.remarks.push(lent.note());
+        draft.retrieved.push(step);
         draft.add(Operation::Load(Source::Step(step)));
-        Ok(lent.outputs()[output].1)
+        let results = if channel.is_some() { lent.functions() } else { lent.outputs() };
+        Ok(results[output].1)
     }
 
     pub fn values(
@@ -102,17 +141,22 @@ impl Planner<'_> {
         let leaf = self
             .channels(quantity, place)
             .map_err(|error| LayerError::of_name(draft.text, span, &error))?;
+        self.leaf(leaf, draft);
+        Ok(match quantity {
+            Quantity::BrightnessTemperature => LayerUnit::Kelvin,
+            Quantity::Radiance => LayerUnit::Radiance,
+            Quantity::MissingShare => LayerUnit::One,
+        })
+    }
+
+    /// Loads a column that comes from the granule.
+    fn leaf(&mut self, leaf: Leaf, draft: &mut Draft<'_>) {
         let known = self.leaves.iter().position(|other| other.is_same(&leaf));
         let at = known.unwrap_or_else(|| {
             self.leaves.push(leaf);
             self.leaves.len() - 1
         });
         draft.load(at);
-        Ok(match quantity {
-            Quantity::BrightnessTemperature => LayerUnit::Kelvin,
-            Quantity::Radiance => LayerUnit::Radiance,
-            Quantity::MissingShare => LayerUnit::One,
-        })
     }
 
     fn channels(&self, quantity: Quantity, place: &Where) -> Result<Leaf, NameError> {

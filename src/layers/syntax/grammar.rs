@@ -189,7 +189,7 @@ fn call(input: &mut Input<'_>, name: &str, callable: Callable, head: Span) -> Re
             symbol(input, ',', "a comma and a wavenumber, as in planck(280, 900)")?;
             Kind::Planck(Box::new(temperature), place(input)?.0)
         }
-        Callable::Calculated => Kind::Calculated(place(input)?.0),
+        Callable::Calculated(what) => Kind::Calculated(what, place(input)?.0),
         Callable::Variable => Kind::Variable(quoted(input, example_of(name))?),
         Callable::Judged(judgement) => {
             Kind::Judged(judgement, Some(quoted(input, example_of(name))?))

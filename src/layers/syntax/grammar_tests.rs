@@ -4,7 +4,8 @@ use proptest::prelude::*;
 
 use super::place::Place;
 use super::tree::{
-    Around, Function, Infix, Judgement, Kind, Node, Prefix, Quantity, Statistic, Where,
+    Around, Function, Infix, Judgement, Kind, Node, OfCalculated, Prefix, Quantity, Statistic,
+    Where,
 };
 use super::{Expression, Mistake};
 use crate::units::SpectralUnit;
@@ -203,6 +204,7 @@ fn trees() -> impl Strategy<Value = Node> {
         "[ -~]{1,12}".prop_map(|name| Kind::Judged(Judgement::Margin, Some(name))),
         Just(Kind::Judged(Judgement::Doubt, None)),
         (1.0f64..3000.0).prop_map(|value| Kind::Calculated(
+            OfCalculated::Departure,
             Place::new(value, SpectralUnit::PerCentimetre).unwrap()
         )),
         (quantity, prop_oneof![place.prop_map(Where::At), interval])

@@ -15,7 +15,9 @@ mod grammar_tests;
 
 pub use expression::{Expression, ExpressionError};
 pub use mistake::Mistake;
+pub use place::Place;
 pub use tree::{
-    Around, Function, Infix, Judgement, Kind, Node, Prefix, Quantity, Span, Statistic, Where,
+    Around, Function, Infix, Judgement, Kind, Node, OfCalculated, Prefix, Quantity, Span,
+    Statistic, Where,
 };
-pub use vocabulary::{DERIVED_NAMES, FRIENDLY_NAMES, FriendlyName, functions};
+pub use vocabulary::{Callable, DERIVED_NAMES, FRIENDLY_NAMES, FriendlyName, functions, name_of};

@@ -28,7 +28,9 @@ impl fmt::Display for Node {
             Kind::Name(name) => out.write_str(name),
             Kind::Variable(name) => write!(out, "var({})", quoted(name)),
             Kind::Spectral(quantity, place) => write_spectral(*quantity, place, out),
-            Kind::Calculated(place) => write!(out, "bt_clear({place})"),
+            Kind::Calculated(what, place) => {
+                write!(out, "{}({place})", name_of(Callable::Calculated(*what)))
+            }
             Kind::Planck(temperature, place) => {
                 write!(out, "planck({temperature}, {place})")
             }

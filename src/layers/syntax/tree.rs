@@ -34,7 +34,7 @@ impl Node {
             | Kind::Variable(_)
             | Kind::Judged(..)
             | Kind::Spectral(..)
-            | Kind::Calculated(_) => {}
+            | Kind::Calculated(..) => {}
         }
     }
 }
@@ -59,8 +59,8 @@ pub enum Kind {
     Judged(Judgement, Option<String>),
     /// `bt(…)` or `rad(…)`.
     Spectral(Quantity, Where),
-    /// `bt_clear(nu)`: the calculated clear-sky brightness temperature of the nearest channel.
-    Calculated(Place),
+    /// `bt_clear(nu)`, `departure(nu)`, …: the nearest channel and what a model calculated for it.
+    Calculated(OfCalculated, Place),
     /// `planck(T, nu)`: the radiance of a black body.
     Planck(Box<Node>, Place),
     /// `-a`, `not a`.
@@ -71,6 +71,19 @@ pub enum Kind {
     Call(Function, Vec<Node>),
     /// `sd3(a)`, `sd_cluster(a)`, …: over the footprints around each.
     Neighbourhood(Statistic, Around, Box<Node>),
+}
+
+/// What is asked of a channel for which a model calculated clear-sky spectra.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum OfCalculated {
+    /// The calculated brightness temperature, K.
+    Clear,
+    /// Observed minus calculated, without the bias between them, K.
+    Departure,
+    /// That bias, K.
+    Bias,
+    /// Whether cloud reaches up into what the channel sees.
+    Affected,
 }
 
 /// What is asked of a channel or an interval.

@@ -1,6 +1,6 @@
 //! The words of the language, one table each.
 
-use super::tree::{Around, Function, Judgement, Quantity, Statistic};
+use super::tree::{Around, Function, Judgement, OfCalculated, Quantity, Statistic};
 use crate::layers::unit::LayerUnit;
 
 /// A field of the geolocation that every granule may have, under the same name in every file.
@@ -99,8 +99,8 @@ pub enum Callable {
     Spectral(Quantity),
     /// `planck`.
     Planck,
-    /// `bt_clear`.
-    Calculated,
+    /// `bt_clear`, `departure` and their like.
+    Calculated(OfCalculated),
     /// `var`.
     Variable,
     /// Functions of numbers, and how many they take.
@@ -125,7 +125,10 @@ const CALLABLE: &[(&str, Callable, &str)] = &[
     ("bt", Callable::Spectral(Quantity::BrightnessTemperature), "bt(900)"),
     ("rad", Callable::Spectral(Quantity::Radiance), "rad(667.5)"),
     ("share_missing", Callable::Spectral(Quantity::MissingShare), "share_missing(650..2760)"),
-    ("bt_clear", Callable::Calculated, "bt_clear(900)"),
+    ("bt_clear", Callable::Calculated(OfCalculated::Clear), "bt_clear(900)"),
+    ("departure", Callable::Calculated(OfCalculated::Departure), "departure(900)"),
+    ("departure_bias", Callable::Calculated(OfCalculated::Bias), "departure_bias(900)"),
+    ("cloud_affected", Callable::Calculated(OfCalculated::Affected), "cloud_affected(720)"),
     ("planck", Callable::Planck, "planck(280, 900)"),
     ("var", Callable::Variable, "var(\"name in the file\")"),
     ("min", Callable::Function(Function::Min, Arity::TwoOrMore), "min(a, b)"),

@@ -6,7 +6,7 @@ use crate::forward::{
     Atmosphere, Changes, Channel, Cover, Footprint, Particles, Response, Scenery, Standard,
     Surface, View,
 };
-use crate::layers::{Neighbours, Retrieval, neighbourhood_spread};
+use crate::layers::{FakeNames, Neighbours, Retrieval, neighbourhood_spread};
 use crate::spectral::brightness_temperature_or_nan;
 
 const SIDE: usize = 16;
@@ -98,7 +98,11 @@ impl Made {
         let others = [bright, spread, same(0.0), same(self.latitude), same(self.season), angles];
         let inputs: Vec<Option<&[f64]>> =
             radiances.iter().chain(&others).map(|column| Some(&column[..])).collect();
-        let [pressure, sd, amount] = by.run(&[SIDE, SIDE], &inputs).try_into().unwrap();
+        let [pressure, sd, amount] = by
+            .run(&FakeNames::black_bodies(&[SIDE, SIDE]), &inputs, None)
+            .columns
+            .try_into()
+            .unwrap();
         Found { pressure, sd, amount, truth }
     }
 }

@@ -14,5 +14,7 @@ mod slicing;
 #[cfg(test)]
 mod granule_tests;
 
+pub(super) use slicing::overcast;
+
 pub use profile::{Profile, ProfileError};
 pub use retrieve::{CLOUD_HEIGHT_NAMES, CloudHeight};

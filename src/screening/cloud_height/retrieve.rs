@@ -9,7 +9,8 @@ use super::clear::{Layout, clear_around, warmest_around};
 use super::intervals::{INTERVALS, PAIRS, WINDOW, middle};
 use super::profile::Profile;
 use super::slicing::{at_pressure, overcast, pressure};
-use crate::layers::{Expression, Input, LayerUnit, Retrieval};
+use crate::granule::Channel;
+use crate::layers::{Expression, Input, LayerUnit, Names, Retrieval, Retrieved};
 use crate::spectral::{brightness_temperature_or_nan, planck};
 
 /// What comes out, and its unit: the pressure of the top, its error, the effective amount.
@@ -80,8 +81,8 @@ impl Retrieval for CloudHeight {
         &CLOUD_HEIGHT_NAMES
     }
 
-    fn inputs(&self) -> &[Input] {
-        self.inputs.get_or_init(|| {
+    fn inputs(&self, _: &dyn Names, _: Option<&Channel>) -> Vec<Input> {
+        let inputs = self.inputs.get_or_init(|| {
             // Two of the four CO2 intervals are needed; which, is up to the file.
             let radiance = |(place, (low, high)): (usize, &(f64, f64))| {
                 (format!("rad({low}..{high})"), place == WINDOW)
@@ -94,24 +95,30 @@ impl Retrieval for CloudHeight {
                 Some(Input { layer: Expression::parse(&text).ok()?, needed })
             };
             all.into_iter().filter_map(read).collect()
-        })
+        });
+        inputs.clone()
     }
 
-    fn note(&self) -> String {
+    fn run(&self, names: &dyn Names, inputs: &[Option<&[f64]>], _: Option<&Channel>) -> Retrieved {
+        let layout = Layout::of(names.lengths());
+        let scene = Scene { heights: self, inputs };
+        let clouds = scene.clouds(&layout, names.footprints());
+        let column = |of: fn(&Cloud) -> f64| clouds.iter().map(of).collect();
+        let columns =
+            vec![column(|cloud| cloud.0), column(|cloud| cloud.1), column(|cloud| cloud.2)];
+        Retrieved { columns, notes: vec![self.note()] }
+    }
+}
+
+impl CloudHeight {
+    /// What a reader of the results should know.
+    pub(super) fn note(&self) -> String {
         match &self.profile {
             Some(profile) => format!("CO2 slicing on the profile {}", profile.name),
             None => {
                 "CO2 slicing on the standard atmosphere nearest by latitude and season".to_owned()
             }
         }
-    }
-
-    fn run(&self, lengths: &[usize], inputs: &[Option<&[f64]>]) -> Vec<Vec<f64>> {
-        let layout = Layout::of(lengths);
-        let scene = Scene { heights: self, inputs };
-        let clouds = scene.clouds(&layout, lengths.iter().product());
-        let column = |of: fn(&Cloud) -> f64| clouds.iter().map(of).collect();
-        vec![column(|cloud| cloud.0), column(|cloud| cloud.1), column(|cloud| cloud.2)]
     }
 }
 
