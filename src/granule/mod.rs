@@ -67,6 +67,8 @@ pub use reading::Progress;
 pub use time::{TimeScale, TimeUnit};
 
 #[cfg(test)]
+mod filling_tests;
+#[cfg(test)]
 mod found_tests;
 #[cfg(test)]
 mod layout_tests;
