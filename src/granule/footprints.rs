@@ -46,6 +46,12 @@ impl FootprintGrid {
         inside.then(number)
     }
 
+    /// The zero-based indices of a footprint in words: `(12, 34, 5)`.
+    pub fn position_words(&self, number: usize) -> String {
+        let parts: Vec<String> = self.position(number).iter().map(usize::to_string).collect();
+        format!("({})", parts.join(", "))
+    }
+
     /// The zero-based indices of a footprint along each dimension.
     pub fn position(&self, number: usize) -> Vec<usize> {
         let mut rest = number;

@@ -78,6 +78,8 @@ pub struct ComparedGranule {
 pub struct DecidedSpectrum {
     /// Which.
     pub footprint: usize,
+    /// Its zero-based indices along its dimensions: `(12, 34, 5)`.
+    pub position: String,
     /// The flags that it carries.
     pub flags: u32,
     /// The numbers that stand for its spectrum.

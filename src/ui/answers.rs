@@ -20,6 +20,7 @@ use super::looking;
 use super::panes::Arrangement;
 use super::picking;
 use super::place::Place;
+use super::precedents;
 use super::screening;
 use super::shown_layer::ShownLayer;
 use super::spreading;
@@ -61,6 +62,10 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Across { request, entry, found } => across::take(app, request, entry, found),
         Answer::AcrossFailed { request, why } => {
             across::failed(app, request, why);
+            Vec::new()
+        }
+        Answer::Measured { request, found } => {
+            precedents::measured(app, request, found);
             Vec::new()
         }
         Answer::Alike { request, found } => spreading::found(app, request, found),
@@ -206,6 +211,10 @@ fn record(
                 app.say("the ledgers are read: press the key again");
             }
             let mut jobs = place.map_or_else(Vec::new, |place| go_to_place(app, &place));
+            if let Some((footprint, words)) = app.seek_footprint.take() {
+                jobs.extend(super::moving::go(app, footprint));
+                app.say(words);
+            }
             jobs.extend(undoing::done_elsewhere(app));
             jobs
         }

@@ -91,6 +91,9 @@ pub struct App {
     pub searching: bool,
     /// The first case of doubt of the granule being opened is to be shown.
     pub seek_case: bool,
+    /// The footprint to go to in the granule being opened, as soon as its ledgers are read, and what
+    /// is said of it then.
+    pub seek_footprint: Option<(usize, String)>,
     /// What is to be done as soon as the ledgers of the granule being opened are read.
     pub then: Option<Action>,
     /// Records of granules left while their last decisions were still on the way to the disk.
@@ -155,6 +158,7 @@ impl App {
             table: Table::Empty,
             searching: false,
             seek_case: false,
+            seek_footprint: None,
             then: None,
             left: Vec::new(),
             panes: Arrangement::default(),

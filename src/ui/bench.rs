@@ -20,6 +20,7 @@ use super::overlay::Selection;
 use super::panes::Arrangement;
 use super::panes::field::Placement;
 use super::place::Place;
+use super::precedents::Visit;
 use super::selecting::{Selecting, Shape};
 use super::shown_layer::ShownLayer;
 use super::side::Side;
@@ -54,6 +55,8 @@ pub struct Bench {
     pub spread: Spread,
     /// The spectra as they were compared last.
     pub measured: Option<Arc<Measured>>,
+    /// Going round the footprints that are like the one under the cursor and decided.
+    pub visit: Option<Visit>,
     /// A spot check under way.
     pub spot: Option<Spot>,
     /// What is left in doubt.
@@ -140,6 +143,7 @@ impl Bench {
             spread: Spread::default(),
             channel_pick: ChannelPick::default(),
             measured: None,
+            visit: None,
             spot: None,
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),
@@ -293,9 +297,7 @@ impl Bench {
 
     /// The zero-based indices of a footprint along its dimensions: `(12, 34, 5)`.
     pub fn position_words(&self, footprint: usize) -> String {
-        let position = self.review.granule().footprints().position(footprint);
-        let parts: Vec<String> = position.iter().map(usize::to_string).collect();
-        format!("({})", parts.join(", "))
+        self.review.granule().footprints().position_words(footprint)
     }
 
     /// The wavenumber of the channel in hand, cm-1.

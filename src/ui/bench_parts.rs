@@ -142,6 +142,8 @@ pub struct Overtaken {
     pub alike: Cancel,
     /// The second layer of the Spread.
     pub against: Cancel,
+    /// Measuring the spectra.
+    pub measured: Cancel,
 }
 
 impl Overtaken {
@@ -151,6 +153,7 @@ impl Overtaken {
         self.indices.cancel();
         self.alike.cancel();
         self.against.cancel();
+        self.measured.cancel();
     }
 }
 
@@ -188,6 +191,8 @@ pub struct Awaited {
     pub against: u64,
     /// Comparing spectra.
     pub alike: u64,
+    /// Measuring the spectra.
+    pub measured: u64,
     /// Taking a threshold over into the rulebook.
     pub adopt: u64,
     /// Finding footprints to select.

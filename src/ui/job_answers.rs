@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use crate::flags::LedgerReading;
 use crate::layers::Layer;
-use crate::review::{Record, Review, Spectrum};
+use crate::review::{Measured, Record, Review, Spectrum};
 use crate::screening::Screened;
 use crate::tray::Standing;
 
@@ -26,6 +26,13 @@ pub enum Answer {
         request: u64,
         /// How far they are from it.
         found: Result<Alike, String>,
+    },
+    /// All spectra were measured.
+    Measured {
+        /// The request.
+        request: u64,
+        /// The spectra as they are compared.
+        found: Result<Arc<Measured>, String>,
     },
     /// An errand ended in a fault of the program.
     AcrossFailed {

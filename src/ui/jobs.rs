@@ -29,6 +29,17 @@ pub enum Job {
         /// Ends it early.
         cancel: Cancel,
     },
+    /// Measure all spectra, to be compared later.
+    Measure {
+        /// The request.
+        request: u64,
+        /// The granule.
+        review: Arc<Review>,
+        /// By what they are compared.
+        measure: Measure,
+        /// Ends it early.
+        cancel: Cancel,
+    },
     /// Run an errand through granules that are not on the table, one answer for each.
     Across {
         /// The request.

@@ -209,7 +209,7 @@ pub const BINDINGS: &[Binding] = &[
     row(&[letter('n')], Action::NextGranule, "next", Moving, "next granule"),
     row(&[letter('p')], Action::PreviousGranule, "previous", Moving, "previous granule"),
     row(&[letter('N')], Action::NextUnsigned, "next-open", Moving, "next granule not signed off"),
-    row(&[key(Code::Enter)], Action::Open, "open", Moving, "open the granule chosen in Tray"),
+    row(&[key(Code::Enter)], Action::Open, "open", Moving, "Tray: open; Evidence: most alike"),
     row(&[letter(']')], Action::NextLayer, "next-layer", Layers, "next suggested layer"),
     row(&[letter('[')], Action::PreviousLayer, "previous-layer", Layers, "previous layer"),
     row(&[letter('e')], Action::AskLayer, "ask-layer", Layers, "type a layer expression"),

@@ -11,7 +11,10 @@ const INTRODUCTION: &str = "\
 Made from the table in `src/ui/keys.rs`; a test holds the two together. While a prompt or the help
 is open, its own line says which keys it takes; Esc leaves it.
 
-In the Tray the up and down keys choose a granule and Enter opens it. In the Spread
+In the Tray the up and down keys choose a granule and Enter opens it. In the Evidence Enter goes to the
+footprint most like the one under the cursor of those that a person decided, then to the next ones, and
+back. In the Ledger Enter shows the whole granule or the footprint, and the key that withdraws takes back
+the row in hand. In the Spread
 Left and Right move the threshold finely, Up and Down coarsely; where it shows two layers, the arrows
 move a place on the picture. In every other pane they move the cursor over the footprints.
 

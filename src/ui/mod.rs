@@ -43,6 +43,7 @@ mod overlay;
 pub mod panes;
 mod picking;
 mod place;
+mod precedents;
 mod prompts;
 mod run;
 mod runner;

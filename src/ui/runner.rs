@@ -57,6 +57,7 @@ fn lane_of(job: &Job) -> Lane {
         }
         Job::Pinned { .. } | Job::Reread { .. } | Job::Select { .. } => Lane::Alone,
         Job::Against { .. } | Job::Adopt { .. } | Job::Alike { .. } => Lane::Alone,
+        Job::Measure { .. } => Lane::Alone,
         Job::Keep { .. } | Job::Export { .. } => Lane::Alone,
     }
 }

@@ -11,7 +11,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking;
 use super::spreading::{self, Source};
-use super::{deciding, doubting};
+use super::{deciding, doubting, precedents};
 
 /// Runs the tests over the granule on the table; the newest request wins.
 pub fn start(app: &mut App) -> Vec<Job> {
@@ -52,6 +52,7 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
             // A layer may be made of what the tests say.
             let mut jobs = looking::refresh_layer(app);
             jobs.extend(doubting::tests_have_run(app));
+            jobs.extend(precedents::measure(app));
             if let Some(test) = in_hand {
                 jobs.extend(take_again(app, &test));
             }

@@ -10,7 +10,7 @@ use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
     across, answers, by_rule, channel_flags, deciding, doubting, ledger, looking, moving, picking,
-    prompts, screening, spot, spreading, strip, tracing, turning, typing,
+    precedents, prompts, screening, spot, spreading, strip, tracing, turning, typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -73,6 +73,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::Up | A::Down | A::Left | A::Right | A::PageUp | A::PageDown => moving::step(app, action),
         A::RowStart | A::RowEnd | A::First | A::Last => moving::step(app, action),
         A::Open if app.focus() == Pane::Ledger => ledger::switch(app),
+        A::Open if app.focus() == Pane::Evidence => precedents::visit(app),
         A::Withdraw if app.focus() == Pane::Ledger => ledger::take_back(app),
         A::NextGranule | A::PreviousGranule | A::NextUnsigned | A::Open => {
             turning::turn(app, action)

@@ -7,8 +7,8 @@ use std::time::{Duration, Instant};
 use crate::flags::read_ledgers;
 use crate::granule::{GranuleError, VariableRole};
 use crate::review::{
-    ExportedBy, Record, ReferenceSpectrum, Review, adopt_threshold, read_bases, rulebook_name,
-    rulebook_of,
+    ExportedBy, Measure, Measured, Record, ReferenceSpectrum, Review, adopt_threshold, read_bases,
+    rulebook_name, rulebook_of,
 };
 use crate::screening::Screened;
 use crate::system::{Cancel, clean_text};
@@ -43,11 +43,13 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             send(Answer::Against { request: *request, found: layer });
         }
         Job::Alike { request, review, footprint, measure, cancel } => {
-            let measured = review
-                .yardstick(*measure)
-                .and_then(|yardstick| review.measured(&Arc::new(yardstick), cancel).map(Arc::new));
-            let found = measured.and_then(|measured| Alike::of(measured, *footprint));
+            let found = measured(review, *measure, cancel);
+            let found = found.and_then(|measured| Alike::of(measured, *footprint));
             send(Answer::Alike { request: *request, found });
+        }
+        Job::Measure { request, review, measure, cancel } => {
+            let found = measured(review, *measure, cancel);
+            send(Answer::Measured { request: *request, found });
         }
         Job::Across { request, errand, paths, cancel } => {
             across(*request, errand, paths, cancel, outside, send);
@@ -148,6 +150,7 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
     Some(match job {
         Job::Against { request, .. } => Answer::Against { request: *request, found: Err(why()) },
         Job::Alike { request, .. } => Answer::Alike { request: *request, found: Err(why()) },
+        Job::Measure { request, .. } => Answer::Measured { request: *request, found: Err(why()) },
         Job::Adopt { request, .. } => Answer::Adopted { request: *request, found: Err(why()) },
         Job::Standing { entry, .. } => Answer::Standing { entry: *entry, found: Err(why()) },
         Job::SignOff { entry, .. } => Answer::SignedOff { entry: *entry, found: Err(why()) },
@@ -173,6 +176,11 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Across { request, .. } => Answer::AcrossFailed { request: *request, why: why() },
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
+}
+
+fn measured(review: &Review, by: Measure, cancel: &Cancel) -> Result<Arc<Measured>, String> {
+    let yardstick = Arc::new(review.yardstick(by)?);
+    review.measured(&yardstick, cancel).map(Arc::new)
 }
 
 /// What cannot be read is none: the spectrum stands without it.

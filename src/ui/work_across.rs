@@ -87,6 +87,7 @@ fn decided(
     let step = all.len().div_ceil(MOST_DECIDED).max(1);
     let one = |footprint: usize| DecidedSpectrum {
         footprint,
+        position: review.granule().footprints().position_words(footprint),
         flags: state.any_flags(footprint),
         spectrum: measured.of(footprint).to_vec(),
     };

@@ -7,6 +7,7 @@ mod deciding;
 mod doubting;
 mod looking;
 mod moving;
+mod precedents;
 mod program;
 mod screening;
 mod spot;

@@ -11,8 +11,10 @@ use crate::ui::app::App;
 use crate::ui::bench::{Bench, RecordState};
 use crate::ui::colour::Tone;
 use crate::ui::deciding;
+use crate::ui::keys::Action;
 use crate::ui::panes::Pane;
 use crate::ui::panes::evidence::{self, EvidenceRow, EvidenceView};
+use crate::ui::precedents;
 
 /// Decisions about one footprint that are shown; the latest count most.
 const MOST_DECISIONS: usize = 2;
@@ -42,6 +44,9 @@ pub fn evidence_rows(app: &App) -> Vec<EvidenceRow> {
         decided(bench, &mut rows);
         section(&mut rows, "Tests");
         super::tests_say::tests_say(bench, &mut rows);
+        super::spectrum_says::spectrum_says(bench, &mut rows);
+        most_alike(app, bench, &mut rows);
+        super::tests_say::not_applicable(bench, &mut rows);
     }
     indices(bench, &mut rows);
     windows(bench, &mut rows);
@@ -135,6 +140,30 @@ fn decision_words(decision: &Decision) -> String {
         _ => deciding::words(decision),
     };
     format!("{time} {who}: {what}")
+}
+
+/// The most alike footprints that a person has decided.
+fn most_alike(app: &App, bench: &Bench, rows: &mut Vec<EvidenceRow>) {
+    section(rows, "Most alike, decided");
+    let Some(measured) = &bench.measured else {
+        let words = match bench.awaited.measured {
+            0 => format!("not compared yet; {} compares", app.keymap.hint(Action::Alike)),
+            _ => "comparing…".to_owned(),
+        };
+        rows.push(EvidenceRow::Words(words, Tone::Faint));
+        return;
+    };
+    let found = bench.precedents(bench.cursor, &app.known);
+    if found.is_empty() {
+        let words = "a person has decided none that can be compared".to_owned();
+        rows.push(EvidenceRow::Words(words, Tone::Faint));
+    }
+    let unit = measured.yardstick().measure().unit();
+    rows.extend(found.iter().map(|one| {
+        let place = precedents::place(one, app);
+        let words = format!("{place} {}", precedents::flags(one, app));
+        fact(&words, super::number(one.far), unit)
+    }));
 }
 
 fn indices(bench: &Bench, rows: &mut Vec<EvidenceRow>) {

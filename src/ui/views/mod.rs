@@ -8,6 +8,7 @@ mod field_signs;
 mod help;
 mod ledger;
 mod overlay;
+mod spectrum_says;
 mod spread;
 mod status;
 mod strip;

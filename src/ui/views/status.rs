@@ -117,6 +117,16 @@ pub fn hints(app: &App) -> Vec<(String, &'static str)> {
             (Action::NextPane, "pane"),
             (Action::Help, "help"),
         ]
+    } else if app.focus() == Pane::Evidence {
+        &[
+            (Action::Open, "most alike"),
+            (Action::PageDown, "scroll"),
+            (Action::NextPane, "pane"),
+            (Action::NextCase, "doubt"),
+            (Action::Flag, "flag"),
+            (Action::Help, "help"),
+            (Action::Quit, "leave"),
+        ]
     } else if app.focus() == Pane::Tray {
         &[
             (Action::Open, "open"),

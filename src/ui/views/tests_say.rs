@@ -29,7 +29,20 @@ pub fn tests_say(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
         rows.push(of_flag(flag));
         rows.extend(margins(&evidence, &flag.flag));
     }
-    silent(&evidence, rows);
+}
+
+/// What does not apply here, and why: tests, and what the spectra as a set could not be asked.
+pub fn not_applicable(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
+    let Some(screened) = &bench.tests.screened else { return };
+    let rejected = bench.review.producer().rejects(bench.cursor);
+    let Some(evidence) = screened.evidence(bench.cursor).filter(|_| !rejected) else { return };
+    let mut found = Vec::new();
+    silent(&evidence, &mut found);
+    found.extend(super::spectrum_says::unasked(bench));
+    if !found.is_empty() {
+        rows.push(EvidenceRow::Section("Not applicable".to_owned()));
+        rows.extend(found);
+    }
 }
 
 fn not_yet(bench: &Bench) -> EvidenceRow {
@@ -135,10 +148,6 @@ fn silent(evidence: &Evidence, rows: &mut Vec<EvidenceRow>) {
     let quiet = || evidence.tests.iter().filter(|test| test.margin.is_none());
     let (elsewhere, here): (Vec<_>, Vec<_>) =
         quiet().partition(|test| test.verdict == crate::screening::Verdict::OtherSurface);
-    if here.is_empty() && elsewhere.is_empty() {
-        return;
-    }
-    rows.push(EvidenceRow::Section("Not applicable".to_owned()));
     for test in here {
         let words = format!("{}: {}", test.name, clean_text(&test.reason));
         rows.push(EvidenceRow::Words(words, Tone::Faint));
