@@ -146,7 +146,8 @@ impl Granule {
     }
 }
 
-fn truths(review: &Review, footprints: usize) -> Result<Vec<Truth>, String> {
+/// What is true about each footprint of a synthetic granule.
+pub fn truths(review: &Review, footprints: usize) -> Result<Vec<Truth>, String> {
     let column = |text: &str| Ok::<_, String>(review.layer(text, &Cancel::new())?.values);
     // Only scenes with a plume say how much there is.
     let plume = |name: &str| {

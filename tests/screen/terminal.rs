@@ -113,7 +113,8 @@ impl Session {
         self.wait(&format!("`{text}` to vanish"), |screen| !screen.contains(text));
     }
 
-    fn wait(&self, what: &str, holds: impl Fn(&str) -> bool) {
+    /// Waits until what the screen shows holds; fails with the last screen when it never does.
+    pub fn wait(&self, what: &str, holds: impl Fn(&str) -> bool) {
         let start = Instant::now();
         loop {
             let screen = self.screen();
@@ -141,6 +142,27 @@ impl Session {
                 self.screen()
             );
             last = now;
+        }
+    }
+
+    /// Types `keys` and waits until the screen has followed and come to rest. Returns how long after
+    /// the keys the last byte came; nothing where no byte came at all.
+    #[allow(dead_code, reason = "the written trial measures with it, tests never do")]
+    pub fn followed(&mut self, keys: &str) -> Duration {
+        const REST: Duration = Duration::from_millis(120);
+        let start = Instant::now();
+        let mut last = (self.bytes.load(Ordering::SeqCst), start);
+        self.keys(keys);
+        loop {
+            thread::sleep(Duration::from_millis(1));
+            let (bytes, now) = (self.bytes.load(Ordering::SeqCst), Instant::now());
+            if bytes != last.0 {
+                last = (bytes, now);
+            }
+            let patience = if last.1 == start { 10 * REST } else { REST };
+            if now - last.1 > patience {
+                return last.1 - start;
+            }
         }
     }
 
