@@ -1,11 +1,12 @@
 //! What is left to decide, as cases: neighbouring footprints in doubt are one case, not fifty.
 
-use super::Review;
+use super::{Review, has_suggestion};
 use crate::flags::FootprintSet;
 use crate::layers::{Names, Neighbours};
 use crate::screening::Screened;
 
-/// Footprints in doubt that lie beside each other.
+/// Footprints in doubt that lie beside each other and of which the tests suggest the same: some flag,
+/// or none. So one word answers for all of a case.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Case {
     /// Which.
@@ -25,11 +26,13 @@ fn cases(
 ) -> Vec<Case> {
     let count = screened.footprints();
     let open: Vec<bool> = (0..count).map(|at| screened.is_doubtful(at) && !settled(at)).collect();
+    let suggested: Vec<bool> = (0..count).map(|at| has_suggestion(screened, at)).collect();
     let mut regions = Regions::new(count);
     for at in (0..count).filter(|at| open[*at]) {
         let beside = neighbours.of(at).iter().map(|one| *one as usize);
+        let alike = |other: &usize| open[*other] && suggested[*other] == suggested[at];
         // Nearness need not be mutual on the ground; one of the two is enough.
-        beside.filter(|other| open[*other]).for_each(|other| regions.join(at, other));
+        beside.filter(alike).for_each(|other| regions.join(at, other));
     }
     let mut members: Vec<Vec<usize>> = vec![Vec::new(); count];
     (0..count).filter(|at| open[*at]).for_each(|at| members[regions.root(at)].push(at));

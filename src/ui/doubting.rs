@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::flags::{FootprintSet, ReviewState};
+use crate::flags::{FootprintSet, GranuleState, ReviewState};
 use crate::review::{Case, Refusal, Ruled, has_suggestion};
 use crate::screening::Screened;
 
@@ -13,7 +13,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
 use super::moving;
-use super::overlay::Selection;
+use super::overlay::{Overlay, Selection};
 use super::selecting::Join;
 use super::turning;
 
@@ -26,6 +26,8 @@ pub struct Doubt {
     shown: Vec<usize>,
     /// The first case is to be shown as soon as the tests have run.
     pub wanted: bool,
+    /// The worst footprint of the case that is shown and selected.
+    in_hand: Option<usize>,
     /// It was told that no case is left here: the next time, the next granule is opened.
     end_told: bool,
 }
@@ -73,10 +75,12 @@ fn next_case(app: &mut App) -> Vec<Job> {
     if bench.tests.screened.is_none() {
         return not_yet(app);
     }
+    let signed = bench.record.open().map(|record| record.state().granule);
     let doubt = &mut bench.doubt;
+    doubt.end_told |= signed == Some(GranuleState::SignedOff);
     match doubt.cases.iter().position(|case| !doubt.shown.contains(&case.worst)) {
+        _ if doubt.end_told => next_granule(app),
         Some(number) => show_case(app, number),
-        None if doubt.end_told => next_granule(app),
         None => {
             doubt.end_told = true;
             tell_end(app);
@@ -113,23 +117,65 @@ fn previous_case(app: &mut App) -> Vec<Job> {
     Vec::new()
 }
 
+/// A case that was in hand and is decided makes room for the next one, whichever key decided it;
+/// one that was let go is no longer in hand.
+pub fn go_on(app: &mut App) -> Vec<Job> {
+    if !matches!(app.overlay, Overlay::None) {
+        return Vec::new();
+    }
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    if bench.selecting.is_on() {
+        return Vec::new();
+    }
+    let Some(worst) = bench.doubt.in_hand.take() else { return Vec::new() };
+    if bench.doubt.cases.iter().any(|case| case.footprints.contains(worst)) {
+        return Vec::new();
+    }
+    let (said, tone) = app.message.clone();
+    let jobs = next_case(app);
+    // What was decided stands behind what is to be decided next.
+    if !said.is_empty() {
+        app.message = (format!("{}. Before: {said}", app.message.0), tone);
+    }
+    jobs
+}
+
+/// After an undo on the way through the cases, the case that is open again is shown.
+pub fn go_back(app: &mut App) -> Vec<Job> {
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    let doubt = &mut bench.doubt;
+    // Behind the case in hand, or behind the last one.
+    let behind = match (doubt.in_hand, doubt.end_told) {
+        (Some(_), _) => 2,
+        (None, true) => 1,
+        (None, false) => return Vec::new(),
+    };
+    let Some(before) = doubt.shown.len().checked_sub(behind) else { return Vec::new() };
+    let worst = doubt.shown[before];
+    let Some(number) = doubt.cases.iter().position(|case| case.worst == worst) else {
+        return Vec::new();
+    };
+    doubt.shown.truncate(before);
+    let (said, tone) = app.message.clone();
+    let jobs = show_case(app, number);
+    app.message = (format!("{}. {said}", app.message.0), tone);
+    jobs
+}
+
 fn show_case(app: &mut App, number: usize) -> Vec<Job> {
-    let (accept, overrule) = (app.keymap.hint(Action::Accept), app.keymap.hint(Action::Overrule));
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     let Some(case) = bench.doubt.cases.get(number).cloned() else { return Vec::new() };
     bench.doubt.shown.push(case.worst);
+    bench.doubt.in_hand = Some(case.worst);
     bench.doubt.end_told = false;
     let count = case.footprints.len();
     let suggested = bench.tests.screened.as_ref().map(|screened| suggested(screened, &case));
     let words = format!("case of {count}");
     bench.selecting.take(Join::Anew, Selection::of(case.footprints, words));
-    let all = bench.doubt.cases.len();
     let jobs = moving::go(app, case.worst);
+    // Which keys answer stands in the hints, how many are left beside it.
     let (doubt, suggested) = (case.doubt, suggested.unwrap_or_default());
-    app.say(format!(
-        "{count} in doubt to {doubt:.2}: {suggested}; {accept} accepts, {overrule} overrules \
-         ({all} left)"
-    ));
+    app.say(format!("{count} in doubt to {doubt:.2}: {suggested}"));
     jobs
 }
 

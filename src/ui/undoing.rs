@@ -7,6 +7,7 @@ use crate::flags::OwnTimes;
 use super::across::{self, Errand};
 use super::app::{App, Direction};
 use super::deciding::{self, words};
+use super::doubting;
 use super::jobs::Job;
 use super::keys::Action;
 use super::moving;
@@ -69,13 +70,15 @@ fn in_this_granule(app: &mut App, action: Action) -> Vec<Job> {
         let verb = if back { "undone" } else { "redone" };
         Ok(format!("{verb}: {}", words(&decision)))
     });
-    let Some(step) = step.filter(|_| done) else { return Vec::new() };
+    let mut jobs = if done && back { doubting::go_back(app) } else { Vec::new() };
+    let Some(step) = step.filter(|_| done) else { return jobs };
     let part = |entry: &usize| {
         let standing = app.tray.entry(*entry).and_then(|row| row.standing.as_ref());
         standing.is_some_and(|standing| standing.steps.contains(&step))
     };
     let entries: Vec<usize> = across::others(app).into_iter().filter(part).collect();
-    across::begin(app, Errand::Turn { step, back, now }, &entries)
+    jobs.extend(across::begin(app, Errand::Turn { step, back, now }, &entries));
+    jobs
 }
 
 /// The granule that an undo or a redo was about is open: it is done, with the cursor at the place.

@@ -45,6 +45,12 @@ pub fn update(app: &mut App, event: Event) -> Vec<Job> {
 }
 
 fn press(app: &mut App, key: Key) -> Vec<Job> {
+    let mut jobs = take_key(app, key);
+    jobs.extend(doubting::go_on(app));
+    jobs
+}
+
+fn take_key(app: &mut App, key: Key) -> Vec<Job> {
     if let Some(bench) = app.bench_mut() {
         bench.touched = true;
     }

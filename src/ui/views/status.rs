@@ -23,6 +23,7 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         facts.push((format!("{}, Esc ends it", across.words()), Tone::Faint));
     }
     let Some(bench) = app.bench() else { return facts };
+    facts.extend(cases_left(bench));
     if bench.selecting.is_on() {
         facts.push((selected(bench), Tone::Accent));
     }
@@ -36,14 +37,6 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         }
         let counts = record.counts();
         facts.push((format!("{} flagged", counts.flagged), Tone::Plain));
-        if bench.tests.screened.is_some() {
-            let (left, tone) = match bench.doubt.cases.len() {
-                0 => ("no case left".to_owned(), Tone::Good),
-                1 => ("1 case left".to_owned(), Tone::Strong),
-                cases => (format!("{cases} cases left"), Tone::Strong),
-            };
-            facts.push((left, tone));
-        }
         facts.push((format!("{} no flag", counts.no_flag), Tone::Plain));
         facts.push((format!("{} not assessed", counts.not_assessed), Tone::Plain));
         facts.push((record.state().granule.name().to_owned(), Tone::Plain));
@@ -52,6 +45,16 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
         facts.push(fact);
     }
     facts
+}
+
+/// How many cases are left to decide: always in view, once the tests have run.
+fn cases_left(bench: &Bench) -> Option<(String, Tone)> {
+    bench.tests.screened.as_ref().zip(bench.record.open())?;
+    Some(match bench.doubt.cases.len() {
+        0 => ("no case left".to_owned(), Tone::Good),
+        1 => ("1 case left".to_owned(), Tone::Strong),
+        cases => (format!("{cases} cases left"), Tone::Strong),
+    })
 }
 
 /// How many footprints the next decision is about, and how what is being drawn changes that.
