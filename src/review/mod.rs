@@ -28,7 +28,7 @@ mod suggestions;
 mod verbs;
 mod yardstick;
 
-pub use adopting::{ThresholdChange, adopt_threshold};
+pub use adopting::{NewThreshold, ThresholdChange, adopt_threshold};
 pub use alike::Measured;
 pub use basis_file::{BasisFileError, basis_path, read_bases, write_bases};
 pub use cases::Case;

@@ -42,7 +42,7 @@ mod surroundings_tests;
 mod worked_tests;
 
 pub use builtin::{BUILTIN_TEXT, builtin};
-pub use change_threshold::with_threshold;
+pub use change_threshold::{with_threshold, with_threshold_as};
 pub use cloud_height::{CLOUD_HEIGHT_NAMES, CloudHeight, Profile, ProfileError};
 pub use departures::{Departures, RANKED_NAMES, RankedChannels};
 pub use evidence::{

@@ -16,6 +16,7 @@ use super::colour::Tone;
 use super::deciding;
 use super::jobs::{Answer, Job};
 use super::keys::Action;
+use super::ledger;
 use super::looking;
 use super::panes::Arrangement;
 use super::picking;
@@ -38,6 +39,10 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
         Answer::Filling { request, share, of_layer } => filling(app, request, share, of_layer),
         Answer::Filled { request, found } => filled(app, request, found),
         Answer::Record { request, found } => record(app, request, found),
+        Answer::Changes(changes, problems) => {
+            ledger::take_changes(app, changes, problems);
+            Vec::new()
+        }
         Answer::Reread { request, found } => reread(app, request, found),
         Answer::Layer { request, found } => layer(app, request, found),
         Answer::Indices { request, found } => indices(app, request, found),

@@ -6,7 +6,7 @@ use std::sync::Arc;
 use jiff::Timestamp;
 use ratatui::layout::{Rect, Size};
 
-use crate::flags::{Author, Campaign, KeySetting};
+use crate::flags::{Author, Campaign, KeySetting, RulebookChange};
 use crate::granule::Opening;
 use crate::review::Record;
 use crate::tray::Tray;
@@ -106,6 +106,8 @@ pub struct App {
     pub overlay: Overlay,
     /// How one goes through the Ledger.
     pub ledger: LedgerLook,
+    /// What was changed in the campaign's rulebook, the earliest first.
+    pub rulebook_changes: Vec<RulebookChange>,
     /// Lines of the Evidence that are scrolled away.
     pub evidence_scroll: usize,
     /// What is being done in granules that are not on the table.
@@ -165,6 +167,7 @@ impl App {
             strip: Strip::default(),
             overlay: Overlay::None,
             ledger: LedgerLook::default(),
+            rulebook_changes: Vec::new(),
             evidence_scroll: 0,
             across: None,
             known: Known::default(),

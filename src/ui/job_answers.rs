@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 use std::sync::Arc;
 
-use crate::flags::LedgerReading;
+use crate::flags::{LedgerReading, RulebookChange};
 use crate::layers::Layer;
 use crate::review::{Measured, Record, Review, Spectrum};
 use crate::screening::Screened;
@@ -108,6 +108,8 @@ pub enum Answer {
         /// The record, and where one was in the granule the last time.
         found: Result<(Box<Record>, Option<Place>), String>,
     },
+    /// What was changed in the campaign's rulebook, and what of it could not be read.
+    Changes(Vec<RulebookChange>, Vec<String>),
     /// The ledgers were read once more.
     Reread {
         /// The request.

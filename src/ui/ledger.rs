@@ -1,6 +1,9 @@
 //! Going through what was decided, and taking any of it back.
 
-use crate::flags::{Act, Decision};
+use jiff::Timestamp;
+
+use crate::flags::{Act, Decision, RulebookChange};
+use crate::review::ThresholdChange;
 
 use super::app::App;
 use super::deciding::{self, words};
@@ -20,8 +23,17 @@ pub struct LedgerLook {
 /// Rows that a page moves.
 const PAGE: usize = 10;
 
-/// The decisions on show, by their place in the record, the newest first.
-pub fn rows_on_show(app: &App) -> Vec<usize> {
+/// A row of the Ledger.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Row {
+    /// A decision about the granule, by its place in the record.
+    Decision(usize),
+    /// A change of the campaign's rulebook, by its place among them.
+    Change(usize),
+}
+
+/// The rows on show, the newest first: decisions, and among them the changes of the rulebook.
+pub fn rows_on_show(app: &App) -> Vec<Row> {
     let Some(bench) = app.bench().filter(|bench| !bench.is_blind()) else { return Vec::new() };
     let Some(record) = bench.record.open() else { return Vec::new() };
     let about = |decision: &Decision| {
@@ -31,8 +43,26 @@ pub fn rows_on_show(app: &App) -> Vec<usize> {
             || matches!(meant.act, Act::SetAside | Act::Reopen | Act::SignOff { .. })
             || meant.act.footprints().is_some_and(|set| set.contains(bench.cursor))
     };
-    let all = record.decisions().iter().enumerate().rev();
-    all.filter(|(_, decision)| about(decision)).map(|(place, _)| place).collect()
+    let decisions = record.decisions().iter().enumerate().filter(|(_, decision)| about(decision));
+    let decisions = decisions.map(|(place, decision)| (decision.at, Row::Decision(place)));
+    let changes = app.rulebook_changes.iter().enumerate();
+    let changes = changes.map(|(place, change)| (change.at, Row::Change(place)));
+    let mut rows: Vec<(Timestamp, Row)> = decisions.chain(changes).collect();
+    // Of one moment, the order in which they stand is kept.
+    rows.sort_by_key(|(at, _)| *at);
+    rows.into_iter().rev().map(|(_, row)| row).collect()
+}
+
+/// Takes what was changed in the rulebook, by whoever works on the campaign.
+pub fn take_changes(app: &mut App, changes: Vec<RulebookChange>, problems: Vec<String>) {
+    if app.rulebook_changes == changes {
+        return;
+    }
+    app.changed = true;
+    app.rulebook_changes = changes;
+    if let Some(problem) = problems.first() {
+        app.warn(problem.clone());
+    }
 }
 
 /// Moves the row in hand; false for keys that mean nothing here. Left and right move the footprint.
@@ -68,7 +98,14 @@ pub fn take_back(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return no_granule(app) };
     let Some(record) = bench.record.open() else { return deciding::not_ready(app) };
     let cursor = app.ledger.cursor.min(rows.len().saturating_sub(1));
-    let Some(decision) = rows.get(cursor).and_then(|place| record.decisions().get(*place)) else {
+    if let Some(Row::Change(place)) = rows.get(cursor) {
+        return take_change_back(app, *place);
+    }
+    let row = rows.get(cursor).and_then(|row| match row {
+        Row::Decision(place) => record.decisions().get(*place),
+        Row::Change(_) => None,
+    });
+    let Some(decision) = row else {
         app.warn("no decision is here to be taken back");
         return Vec::new();
     };
@@ -86,4 +123,20 @@ pub fn take_back(app: &mut App) -> Vec<Job> {
     let added = rows_on_show(app).len().saturating_sub(rows.len());
     app.ledger.cursor = cursor + added;
     jobs
+}
+
+/// Puts a threshold back to what it was; that is a change of the rulebook like any other.
+fn take_change_back(app: &mut App, place: usize) -> Vec<Job> {
+    if let Some(why) = &app.outside.look_only {
+        let words = format!("looking only: {why}");
+        app.warn(words);
+        return Vec::new();
+    }
+    let (request, now) = (app.request(), app.now());
+    let Some(change) = app.rulebook_changes.get(place) else { return Vec::new() };
+    let why = Some(format!("takes back the change by {}", change.person));
+    let change = ThresholdChange::taking_back(change, why, now);
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
+    bench.awaited.adopt = request;
+    vec![Job::Adopt { request, change }]
 }

@@ -86,8 +86,12 @@ fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
 
 fn handle(app: &mut App, screen: &mut Screen, runner: &mut Runner, event: Event) {
     // Whether the ledgers have news shows itself in `update`.
-    let asking =
-        matches!(event, Event::LedgerMoved | Event::Quiet | Event::Answer(Answer::Reread { .. }));
+    let asking = matches!(
+        event,
+        Event::LedgerMoved
+            | Event::Quiet
+            | Event::Answer(Answer::Reread { .. } | Answer::Changes(..))
+    );
     app.changed |= !asking;
     let mouse = app.mouse;
     for job in update(app, event) {

@@ -56,6 +56,7 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         }
         Job::Adopt { request, change } => {
             let found = adopt_threshold(&outside.campaign, &outside.author, change);
+            send(changes(outside));
             let found = found.map_err(|error| error.to_string());
             send(Answer::Adopted { request: *request, found });
         }
@@ -82,10 +83,12 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         }
         Job::Record { request, review } => {
             let found = record(review, outside);
+            send(changes(outside));
             send(Answer::Record { request: *request, found });
         }
         Job::Reread { request, identity } => {
             let found = read_ledgers(&outside.campaign, identity);
+            send(changes(outside));
             send(Answer::Reread { request: *request, found });
         }
         Job::Layer { request, review, text, cancel } => {
@@ -176,6 +179,11 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Across { request, .. } => Answer::AcrossFailed { request: *request, why: why() },
         Job::Export { request, .. } => Answer::Exported { request: *request, found: Err(why()) },
     })
+}
+
+fn changes(outside: &Outside) -> Answer {
+    let (changes, problems) = outside.campaign.rulebook_changes();
+    Answer::Changes(changes, problems)
 }
 
 fn measured(review: &Review, by: Measure, cancel: &Cancel) -> Result<Arc<Measured>, String> {

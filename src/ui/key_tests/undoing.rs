@@ -110,3 +110,33 @@ fn a_granule_left_before_its_decisions_were_kept_shows_them_when_one_comes_back(
     trial.leave();
     assert_eq!(place.review(&NAMES).flagged("cloudy"), [0, 1]);
 }
+
+#[test]
+fn the_ledger_shows_changes_of_the_rulebook_and_takes_them_back() {
+    let place = super::screening::place(&["a.nc"]);
+    let mut trial = place.review(&["a.nc"]);
+    let before = trial.bench().tests.screened.clone().unwrap().rulebook.fingerprint.clone();
+    trial.keys("f c");
+    trial.types(":try cold window").keys("Enter Left Left D").types("warmer coast").keys("Enter");
+    trial.keys("7");
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains("ada rulebook: cold window 260 to 259"), "{screen}");
+    assert!(screen.contains("(warmer coast)") && screen.contains("ada cloudy at 1"), "{screen}");
+    trial.keys("w");
+    assert!(trial.message().starts_with("cold window: 260 in place of 259"), "{}", trial.message());
+    let after = trial.bench().tests.screened.clone().unwrap().rulebook.fingerprint.clone();
+    assert_eq!(after, before, "the tests have run by the threshold of before");
+    let screen = trial.screen(120, 40);
+    assert!(screen.contains("x ada rulebook: cold window 260 to 259"), "{screen}");
+    assert_eq!(trial.flagged("cloudy"), [0], "what was decided stays");
+    // In the next session too, and by somebody else.
+    trial.leave();
+    let mut bo = place.review_by("bo", &["a.nc"]);
+    bo.keys("7 Down w");
+    assert_eq!(
+        bo.message(),
+        "the rulebook stays as it was: it was changed again since and is 260 now"
+    );
+    bo.keys("Up w");
+    assert!(bo.message().starts_with("cold window: 259"), "{}", bo.message());
+}

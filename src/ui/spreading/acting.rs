@@ -3,7 +3,7 @@
 use std::sync::Arc;
 
 use super::{Against, Source};
-use crate::review::ThresholdChange;
+use crate::review::{NewThreshold, ThresholdChange};
 use crate::screening::{Sense, Threshold, proposed_threshold};
 use crate::ui::app::App;
 use crate::ui::bench::{Bench, overtake};
@@ -266,7 +266,8 @@ pub fn adopt(app: &mut App, why: Option<String>) -> Vec<Job> {
     };
     let test = screened.rulebook.tests[place].name.clone();
     let fingerprint = screened.rulebook.fingerprint.clone();
-    let change = ThresholdChange { test, way, to, fingerprint, why, now };
+    let to = NewThreshold::Tried { to, fingerprint };
+    let change = ThresholdChange { test, way, to, why, now };
     bench.awaited.adopt = request;
     vec![Job::Adopt { request, change }]
 }
