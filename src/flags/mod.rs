@@ -24,6 +24,7 @@ mod ledger_reader;
 #[cfg(test)]
 mod ledger_tests;
 mod ledger_writer;
+mod persons_words;
 mod places;
 mod plane;
 mod protected_parts;
@@ -52,6 +53,7 @@ pub use key_settings::KeySetting;
 pub use ledger_line::{LEDGER_FORMAT, LEDGER_VERSION};
 pub use ledger_reader::{LedgerProblem, LedgerReading, Loss, read_ledgers};
 pub use ledger_writer::{LedgerEvent, LedgerWriter, NotKept};
+pub use persons_words::{PersonsWord, persons_words};
 pub use quality_map::{QualityMap, Treatment};
 pub use replay::Replay;
 pub use review_state::{GranuleState, ReviewState};

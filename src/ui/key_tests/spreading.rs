@@ -35,18 +35,34 @@ fn a_threshold_moves_and_the_field_and_the_counts_follow() {
 }
 
 #[test]
-fn a_threshold_is_measured_against_what_persons_decided() {
-    let (_place, mut trial) = one_granule();
-    // The first row is flagged, the second looked at and left without a flag.
-    trial.keys("v End f c Down Home v End a 4 Right");
-    trial.types(":select all").keys("Enter Esc");
-    let x = trial.bench().spread.x.unwrap();
-    let screen = trial.screen(120, 24);
-    let false_alarms = (x - 256.0).ceil().clamp(0.0, POSITIONS as f64);
+fn a_threshold_is_measured_against_what_persons_said_about_its_flag() {
+    let place = super::screening::place(&["a.nc"]);
+    let mut trial = place.review(&["a.nc"]);
+    // Below 260 K it is cloudy, says the test: footprints 0 to 9. By hand the first row is cloudy, the
+    // second SO2; dust is withdrawn from nowhere; the last is cloudy against the test.
+    trial.keys("v End f c Down Home v End f s G f c");
+    trial.types(":try cold window").keys("Enter");
+    let words = |trial: &mut Trial| trial.screen(200, 24);
+    let screen = words(&mut trial);
     assert!(
-        screen.contains(&format!("decided 12: 6 hit, 0 missed, {false_alarms} false")),
+        screen.contains("on cloudy persons agree at 6, oppose at 1 (1 missed, 0 false)"),
         "{screen}"
     );
+    // Withdrawn where the test says cloudy: a false alarm. Only looked at: no word.
+    trial.keys("Esc 2 Home g w c a 4");
+    let screen = words(&mut trial);
+    assert!(screen.contains("agree at 5, oppose at 2 (1 missed, 1 false)"), "{screen}");
+    // What was accepted came from the test itself.
+    trial.keys("Esc 2 Down Down y 4");
+    let screen = words(&mut trial);
+    assert!(
+        screen.contains("agree at 5, oppose at 2 (1 missed, 1 false), 1 accepted not"),
+        "{screen}"
+    );
+    // What was overruled did too, and was opposed.
+    trial.keys("Esc 2 Up Right Right Right R 4");
+    let screen = words(&mut trial);
+    assert!(screen.contains("agree at 5, oppose at 3 (1 missed, 2 false)"), "{screen}");
 }
 
 #[test]
