@@ -264,7 +264,9 @@ fn as_json(rulebook: &Rulebook) -> Value {
         "fingerprint": rulebook.fingerprint,
         "surfaces": rulebook.surfaces.iter().map(surface).collect::<Vec<_>>(),
         "families": families
-            .map(|family| json!({ "name": family.name, "sees": family.sees }))
+            .map(|family| json!({
+                "name": family.name, "sees": family.sees, "optional": family.optional
+            }))
             .collect::<Vec<_>>(),
         "definitions": definitions.collect::<Vec<_>>(),
         "health": LIMITS

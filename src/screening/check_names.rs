@@ -5,10 +5,12 @@ use std::ops::Range;
 
 use super::cloud_height::CLOUD_HEIGHT_NAMES;
 use super::departures::RANKED_NAMES;
+use super::order::{asked, stages};
 use super::read_rulebook::{Plain, meant};
+use super::rulebook::Test;
 use super::table_reader::Notebook;
 use super::threshold::Threshold;
-use crate::layers::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, INDICES, functions};
+use crate::layers::{DERIVED_NAMES, Expression, FRIENDLY_NAMES, INDICES, Judgement, functions};
 use crate::system::clean_text;
 
 /// Notes what is wrong with the names.
@@ -26,14 +28,10 @@ pub fn check_names(
     }
     for (span, key, expression) in expressions(plain) {
         known_words(notebook, &span, &key, expression, by_name);
-        if expression.asks_tests() {
-            let text = clean_text(expression.text());
-            let what = "doubt, probability, flag and margin are known only after the tests: a rulebook \
-                        that asks for them leads back to itself";
-            notebook.note(&span, &key, format!("{what}\n    {text}"));
-        }
+        known_judgements(notebook, &span, &key, expression, plain);
     }
     circles(notebook, by_name, plain);
+    asking(notebook, by_name, plain);
     families(notebook, plain);
     weights(notebook, plain);
 }
@@ -91,6 +89,47 @@ fn known_words(
         }
         let what = format!("there is no {name}{}", meant(name, &known));
         notebook.note(span, key, format!("{what}\n    {}", clean_text(expression.text())));
+    }
+}
+
+/// Flags and tests whose results are asked for: each must be there.
+fn known_judgements(
+    notebook: &mut Notebook,
+    span: &Range<usize>,
+    key: &str,
+    expression: &Expression,
+    plain: &Plain<'_>,
+) {
+    for (judgement, of) in expression.judgements() {
+        let tests = plain.tests.iter().map(|(_, test)| test);
+        let (kind, known): (&str, Vec<&str>) = match judgement {
+            Judgement::Margin => ("test", tests.map(|test| test.name.as_str()).collect()),
+            _ => ("flag that a test speaks about", tests.map(|test| test.flag.as_str()).collect()),
+        };
+        if let Some(of) = of.filter(|of| !known.contains(of)) {
+            let what = format!("there is no {kind} called {}{}", clean_text(of), meant(of, &known));
+            notebook.note(span, key, format!("{what}\n    {}", clean_text(expression.text())));
+        }
+    }
+}
+
+/// Surfaces are chosen before any test runs, and tests must not lead back to themselves.
+fn asking(notebook: &mut Notebook, by_name: &BTreeMap<String, Expression>, plain: &Plain<'_>) {
+    for (span, surface) in plain.surfaces {
+        let asks = |place: &Expression| !asked(place, by_name).is_empty();
+        if surface.places.iter().any(asks) {
+            let key = format!("surfaces \"{}\", where", clean_text(&surface.name));
+            let what = "which surface holds is known before the tests: it can't ask what they say";
+            notebook.note(span, &key, what);
+        }
+    }
+    let tests: Vec<&Test> = plain.tests.iter().map(|(_, test)| test).collect();
+    for place in stages(&tests, by_name).err().into_iter().flatten() {
+        let (span, test) = &plain.tests[place];
+        let what = "the test leads back to itself, or asks another one that does: the doubt about a \
+                    footprint follows from all tests, that about a flag and whether it is set from all of \
+                    its tests";
+        notebook.note(span, &format!("tests \"{}\"", clean_text(&test.name)), what);
     }
 }
 

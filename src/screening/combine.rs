@@ -63,6 +63,13 @@ pub struct Conclusion {
     pub doubt: f64,
 }
 
+impl Conclusion {
+    /// Whether the flag is set: not where no test speaks, nor by a coin toss.
+    pub fn is_set(&self) -> bool {
+        self.probability > 0.5
+    }
+}
+
 /// From families to a conclusion: weight and voice of each.
 pub fn conclude(start: f64, families: impl IntoIterator<Item = (f64, Option<f64>)>) -> Conclusion {
     let (mut voices, mut speaking, mut total, mut heard) = (0.0, 0.0, 0.0, false);

@@ -256,7 +256,8 @@ fn reason(test: &Test, way: &Way, result: &TestResult, footprint: usize) -> Stri
             "a radiance is zero or less and has no brightness temperature".to_owned()
         }
         Verdict::Missing if result.values[footprint].is_nan() => {
-            format!("{} is missing here", way.expression.text())
+            let notes = if result.notes.is_empty() { "" } else { "; " };
+            format!("{} is missing here{notes}{}", way.expression.text(), result.notes.join("; "))
         }
         Verdict::Missing => format!("the threshold {} is missing here", threshold_words(way)),
     }

@@ -4,7 +4,9 @@ use std::collections::BTreeMap;
 use std::ops::Range;
 
 use crate::granule::Channel;
-use crate::layers::{Expression, Judgement, NameError, Names, Neighbours, Retrieval, Values};
+use crate::layers::{
+    Expression, Judgement, Judgements, NameError, Names, Neighbours, Retrieval, Values,
+};
 
 /// Names with the definitions of a rulebook in place of their own.
 pub struct LentNames<'n> {
@@ -12,6 +14,8 @@ pub struct LentNames<'n> {
     pub names: &'n dyn Names,
     /// The definitions.
     pub definitions: &'n BTreeMap<String, Expression>,
+    /// What tests have said so far, in place of what was said before the rulebook ran.
+    pub judgements: Option<&'n dyn Judgements>,
 }
 
 impl Names for LentNames<'_> {
@@ -77,7 +81,10 @@ impl Names for LentNames<'_> {
     }
 
     fn judged(&self, judgement: Judgement, of: Option<&str>) -> Result<Values, NameError> {
-        self.names.judged(judgement, of)
+        match self.judgements {
+            Some(judgements) => judgements.judged(judgement, of),
+            None => Err(NameError::NotJudged(judgement.word())),
+        }
     }
 
     fn lengths(&self) -> &[usize] {

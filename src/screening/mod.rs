@@ -21,6 +21,7 @@ mod histogram;
 mod judgements;
 mod lent_names;
 mod mistakes;
+mod order;
 mod read_rulebook;
 mod read_threshold;
 mod rulebook;

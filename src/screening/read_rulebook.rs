@@ -243,7 +243,8 @@ fn definition(table: &mut TableReader<'_, '_>) -> Option<Definition> {
 
 fn family(table: &mut TableReader<'_, '_>) -> Option<Family> {
     let sees = table.text("sees").unwrap_or_default();
-    Some(Family { name: table.needed_text("name")?, sees })
+    let optional = table.truth("optional");
+    Some(Family { name: table.needed_text("name")?, sees, optional })
 }
 
 fn anywhere() -> Surface {

@@ -63,6 +63,9 @@ pub struct Family {
     pub name: String,
     /// What its tests see.
     pub sees: String,
+    /// Whether it counts only where it speaks, for it rests on what few files have: its silence is no
+    /// loss of coverage.
+    pub optional: bool,
 }
 
 /// A kind of ground with its own starting points and weights.

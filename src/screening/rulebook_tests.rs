@@ -116,6 +116,24 @@ fn mistakes_are_pointed_at() {
         ),
         ("threshold = 270", "threshold = 270\non = [\"see\"]", "there is no surface see"),
         ("[[families]]", "[families", "small.toml:9: "),
+        (
+            "softness = 3",
+            "softness = 3\nwhen = 'margin(\"cold windw\") > 0'",
+            "there is no test called cold windw; did you mean cold window?",
+        ),
+        ("softness = 3", "softness = 3\nwhen = 'flag(\"dust\")'", "called dust; there are cloudy"),
+        (
+            "softness = 3",
+            "softness = 3\nwhen = 'margin(\"cold window\") > 0'",
+            "small.toml:12: tests \"cold window\": the test leads back to itself",
+        ),
+        ("softness = 3", "softness = 3\nwhen = 'doubt < 0.5'", "leads back to itself"),
+        ("\"bt(900)\"", "'probability(\"cloudy\")'", "leads back to itself"),
+        (
+            "[[families]]",
+            "[[surfaces]]\nname = \"odd\"\nwhere = 'flag(\"cloudy\")'\n\n[[families]]",
+            "it can't ask what they say",
+        ),
     ] {
         let found = spoiled(from, to);
         assert!(found.contains(message), "{to}: {found}");

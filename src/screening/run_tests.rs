@@ -2,7 +2,9 @@
 
 use rayon::prelude::*;
 
+use super::judgements::SoFar;
 use super::lent_names::LentNames;
+use super::order::stages;
 use super::rulebook::{Rulebook, Test, Way};
 use super::threshold::Threshold;
 use super::verdict::Verdict;
@@ -34,32 +36,61 @@ pub struct TestResult {
     pub notes: Vec<String>,
 }
 
-/// The expressions of a rulebook, each once.
-pub fn expressions(rulebook: &Rulebook) -> Vec<&Expression> {
-    let mut all: Vec<&Expression> = Vec::new();
-    let mut add = |expression| {
-        if !all.contains(&expression) {
-            all.push(expression);
+/// Some expressions, each once.
+fn once<'e>(all: impl Iterator<Item = &'e Expression>) -> Vec<&'e Expression> {
+    let mut once: Vec<&Expression> = Vec::new();
+    for expression in all {
+        if !once.contains(&expression) {
+            once.push(expression);
         }
-    };
-    rulebook.surfaces.iter().flat_map(|surface| &surface.places).for_each(&mut add);
-    rulebook.tests.iter().flat_map(Test::expressions).for_each(&mut add);
-    all
+    }
+    once
 }
 
-/// The surface of each footprint, by place in the rulebook, and what each test gave.
+fn layers<'e>(expressions: impl Iterator<Item = &'e Expression>, names: &dyn Names) -> Layers<'e> {
+    let expressions = once(expressions);
+    let layers = evaluate_all(&expressions, names);
+    expressions.into_iter().zip(layers).collect()
+}
+
+/// The surface of each footprint, by place in the rulebook, and what each test gave. Tests that ask
+/// what others said run after them; the numbers are the same in whatever order they are written.
 pub fn run(rulebook: &Rulebook, names: &dyn Names) -> (Vec<Option<usize>>, Vec<TestResult>) {
-    let names = LentNames { names, definitions: &rulebook.by_name };
-    let expressions = expressions(rulebook);
-    let layers = evaluate_all(&expressions, &names);
-    let layers: Layers<'_> = expressions.into_iter().zip(layers).collect();
-    let mut surfaces = surfaces(rulebook, &layers, names.footprints());
+    let definitions = &rulebook.by_name;
+    let tests: Vec<&Test> = rulebook.tests.iter().collect();
+    // A rulebook was read only if its tests have an order.
+    let stages = stages(&tests, definitions).unwrap_or_default();
+    let of_stage = |stage: &[usize]| stage.iter().map(|place| tests[*place]).collect::<Vec<_>>();
+    let footprints = names.footprints();
+    let first = of_stage(stages.first().map_or(&[], Vec::as_slice));
+    let places = rulebook.surfaces.iter().flat_map(|surface| &surface.places);
+    let lent = LentNames { names, definitions, judgements: None };
+    let together = layers(places.chain(first.iter().flat_map(|test| test.expressions())), &lent);
+    let mut surfaces = surfaces(rulebook, &together, footprints);
     // Without a surface no test speaks.
     for (at, surface) in surfaces.iter_mut().enumerate() {
         *surface = surface.filter(|_| !names.is_left_out(at));
     }
-    let tests = rulebook.tests.par_iter().map(|test| one(test, &surfaces, &layers)).collect();
-    (surfaces, tests)
+    let mut results: Vec<TestResult> = vec![TestResult::silent(footprints); tests.len()];
+    let keep = |stage: &[usize], layers: &Layers<'_>, results: &mut Vec<TestResult>| {
+        let done: Vec<TestResult> =
+            stage.par_iter().map(|place| one(tests[*place], &surfaces, layers)).collect();
+        for (place, result) in stage.iter().zip(done) {
+            results[*place] = result;
+        }
+    };
+    for (number, stage) in stages.iter().enumerate() {
+        if number == 0 {
+            keep(stage, &together, &mut results);
+            continue;
+        }
+        let own = of_stage(stage);
+        let so_far = SoFar { rulebook, surfaces: &surfaces, tests: &results };
+        let lent = LentNames { names, definitions, judgements: Some(&so_far) };
+        let layers = layers(own.iter().flat_map(|test| test.expressions()), &lent);
+        keep(stage, &layers, &mut results);
+    }
+    (surfaces, results)
 }
 
 /// Each footprint takes the first surface that holds; one that can't be decided does not hold.
@@ -157,12 +188,8 @@ fn one(test: &Test, surfaces: &[Option<usize>], layers: &Layers<'_>) -> TestResu
         way: chosen.as_ref().map(|chosen| chosen.place),
         lacks,
         guard_lacks,
-        values: vec![f64::NAN; footprints],
-        thresholds: vec![f64::NAN; footprints],
-        margins: vec![f64::NAN; footprints],
-        halved: vec![false; footprints],
-        verdicts: vec![Verdict::NotInFile; footprints],
         notes: chosen.as_ref().map_or_else(Vec::new, |chosen| chosen.value.notes.clone()),
+        ..TestResult::silent(footprints)
     };
     for (footprint, surface) in surfaces.iter().enumerate() {
         if let Some(chosen) = &chosen {
@@ -188,6 +215,21 @@ fn one(test: &Test, surfaces: &[Option<usize>], layers: &Layers<'_>) -> TestResu
 }
 
 impl TestResult {
+    /// Of a test that has not run.
+    fn silent(footprints: usize) -> TestResult {
+        TestResult {
+            way: None,
+            lacks: String::new(),
+            guard_lacks: String::new(),
+            values: vec![f64::NAN; footprints],
+            thresholds: vec![f64::NAN; footprints],
+            margins: vec![f64::NAN; footprints],
+            halved: vec![false; footprints],
+            verdicts: vec![Verdict::NotInFile; footprints],
+            notes: Vec::new(),
+        }
+    }
+
     fn speak(&mut self, chosen: &Chosen<'_>, footprint: usize) -> Verdict {
         let (value, threshold) = (self.values[footprint], self.thresholds[footprint]);
         let margin = chosen.way.sense.margin(value, threshold, chosen.way.softness);

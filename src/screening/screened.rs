@@ -43,8 +43,7 @@ pub struct FlagResult {
 impl FlagResult {
     /// Whether the tests set the flag.
     pub fn is_set(&self, footprint: usize) -> bool {
-        // Not a number where no test speaks, and then not set; nor is a coin toss.
-        self.conclusions[footprint].probability > 0.5
+        self.conclusions[footprint].is_set()
     }
 }
 
@@ -92,6 +91,8 @@ pub struct Seat<'r> {
     pub family: &'r str,
     /// Its weight.
     pub weight: f64,
+    /// Whether it counts only where it speaks.
+    pub optional: bool,
     /// Its tests, by place in the rulebook.
     pub tests: Vec<usize>,
 }
@@ -114,7 +115,10 @@ impl<'r> Councils<'r> {
                     None => {
                         let surface = &rulebook.surfaces[*surface];
                         let weight = surface.weight_of(&test.flag, &test.family);
-                        council.push(Seat { family: &test.family, weight, tests: vec![place] });
+                        let mut families = rulebook.families.iter();
+                        let optional = families.any(|one| one.name == test.family && one.optional);
+                        let (family, tests) = (test.family.as_str(), vec![place]);
+                        council.push(Seat { family, weight, optional, tests });
                     }
                 }
             }
@@ -141,7 +145,8 @@ impl<'r> Councils<'r> {
         }
     }
 
-    fn conclude(
+    /// What is concluded about a flag at a footprint.
+    pub fn conclude(
         &self,
         flag: &str,
         surface: Option<usize>,
@@ -149,11 +154,11 @@ impl<'r> Councils<'r> {
         tests: &[TestResult],
     ) -> Conclusion {
         let Some(surface) = surface else { return conclude(0.0, []) };
-        let seats = self.seats(flag, surface).iter();
-        conclude(
-            self.rulebook.surfaces[surface].start_of(flag),
-            seats.map(|seat| (seat.weight, self.voice(&seat.tests, footprint, tests))),
-        )
+        let heard = self.seats(flag, surface).iter().filter_map(|seat| {
+            let voice = self.voice(&seat.tests, footprint, tests);
+            (voice.is_some() || !seat.optional).then_some((seat.weight, voice))
+        });
+        conclude(self.rulebook.surfaces[surface].start_of(flag), heard)
     }
 }
 

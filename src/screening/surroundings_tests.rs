@@ -148,6 +148,77 @@ fn a_rulebook_that_asks_for_its_own_results_is_refused() {
     assert!(error.contains("leads back to itself") && error.contains("T11"), "{error}");
 }
 
+/// One test that asks what two others said, and one of them what a flag came to.
+const ASKING: &str = r#"format = "radsieve rulebook 1"
+name = "asking"
+title = "for tests"
+[[families]]
+name = "any"
+
+[[tests]]
+name = "both"
+family = "any"
+flag = "unusual"
+expression = 'min(margin("cold"), margin("colder"))'
+sense = "above"
+threshold = 0
+softness = 1
+source = "this test"
+
+[[tests]]
+name = "colder"
+family = "any"
+flag = "thin_cloud"
+expression = 'bt(900)'
+sense = "below"
+threshold = 280
+softness = 10
+when = 'flag("cloudy")'
+source = "this test"
+
+[[tests]]
+name = "cold"
+family = "any"
+flag = "cloudy"
+expression = 'bt(900)'
+sense = "below"
+threshold = 290
+softness = 10
+source = "this test"
+"#;
+
+/// Worked by hand at 285, 275 and 295 K: "cold" gives 0.5, 1.5 and -0.5; "colder" -0.5, 0.5, and nothing
+/// where no cloud was found; "both" the smaller of the two.
+#[test]
+fn tests_may_ask_what_others_said_in_whatever_order_they_stand() {
+    let bodies = |wavenumber: f64, at: usize| planck(wavenumber, [285.0, 275.0, 295.0][at]);
+    let parse = |text: &str| crate::screening::Rulebook::parse(text, "asking");
+    let margins = |text: &str, test: &str| {
+        let screened = screen(&parse(text).unwrap(), &sea(&[1, 3], bodies));
+        let place = screened.rulebook.tests.iter().position(|one| one.name == test).unwrap();
+        screened.tests[place].margins.clone()
+    };
+    let (head, tests) = ASKING.split_once("[[tests]]").unwrap();
+    let parts: Vec<&str> = tests.split("[[tests]]").collect();
+    for order in [[0, 1, 2], [2, 1, 0], [1, 0, 2]] {
+        let tests: String = order.iter().map(|at| format!("[[tests]]{}\n", parts[*at])).collect();
+        let text = format!("{head}{tests}");
+        let near = |found: Vec<f64>, expected: [f64; 3]| {
+            let fits = |(one, other): (&f64, &f64)| {
+                (one - other).abs() < 1e-9 || one.is_nan() && other.is_nan()
+            };
+            assert!(found.iter().zip(&expected).all(fits), "{order:?}: {found:?}");
+        };
+        near(margins(&text, "cold"), [0.5, 1.5, -0.5]);
+        near(margins(&text, "colder"), [-0.5, 0.5, f64::NAN]);
+        near(margins(&text, "both"), [-0.5, 0.5, f64::NAN]);
+    }
+    let circle = ASKING.replacen("bt(900)", "bt(900) + margin(\"both\")", 1);
+    let error = parse(&circle).unwrap_err().to_string();
+    assert!(error.contains("tests \"both\"") && error.contains("tests \"colder\""), "{error}");
+    assert!(!error.contains("tests \"cold\":"), "{error}");
+}
+
 /// Cloud height is a name that a rulebook may use.
 #[test]
 fn a_rulebook_may_ask_for_cloud_height() {

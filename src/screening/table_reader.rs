@@ -114,6 +114,18 @@ impl<'n, 'd> TableReader<'n, 'd> {
         number
     }
 
+    /// A truth; false where it is not there.
+    pub fn truth(&mut self, key: &'static str) -> bool {
+        let Some(value) = self.value(key) else { return false };
+        match value.get_ref() {
+            DeValue::Boolean(truth) => *truth,
+            other => {
+                self.wrong(key, value, format!("expected true or false, found {}", kind(other)));
+                false
+            }
+        }
+    }
+
     /// A list of numbers.
     pub fn numbers(&mut self, key: &str, value: Value<'_>) -> Option<Vec<f64>> {
         let list = value.get_ref().as_array();

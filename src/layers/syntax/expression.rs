@@ -4,7 +4,7 @@ use std::fmt;
 
 use super::grammar;
 use super::mistake::Mistake;
-use super::tree::{Kind, Node};
+use super::tree::{Judgement, Kind, Node};
 
 /// A layer expression that has been read without mistakes.
 #[derive(Debug, Clone)]
@@ -34,9 +34,18 @@ impl Expression {
 
     /// Whether it asks what screening tests said.
     pub fn asks_tests(&self) -> bool {
-        let mut asks = false;
-        self.tree().visit(&mut |node| asks |= matches!(node.kind, Kind::Judged(..)));
-        asks
+        !self.judgements().is_empty()
+    }
+
+    /// What it asks of screening tests, and of which flag or test, in the order of the text.
+    pub fn judgements(&self) -> Vec<(Judgement, Option<&str>)> {
+        let mut judgements = Vec::new();
+        self.tree().visit(&mut |node| {
+            if let Kind::Judged(judgement, of) = &node.kind {
+                judgements.push((*judgement, of.as_deref()));
+            }
+        });
+        judgements
     }
 
     /// The bare names in it, in the order of the text, each once.

@@ -11,7 +11,7 @@ use crate::spectral::planck;
 const ANGLES: [f64; 5] = [0.0, 30.0, 45.0, 55.0, 62.0];
 
 /// Clouds are looked for below this pressure only, hPa.
-const LOWEST_PRESSURE: f64 = 60.0;
+pub const LOWEST_PRESSURE: f64 = 60.0;
 
 /// Levels of air and what they let pass.
 #[derive(Debug)]

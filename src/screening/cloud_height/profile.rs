@@ -1,5 +1,6 @@
 //! A profile of the air that a user gives.
 
+use super::air::LOWEST_PRESSURE;
 use crate::forward::{Atmosphere, GivenLevel};
 use crate::system::clean_text;
 
@@ -26,6 +27,8 @@ pub struct ProfileError {
 
 /// Fewer levels than this are no profile.
 const FEWEST: usize = 10;
+/// So many of them must lie where clouds are.
+const FEWEST_WITH_CLOUDS: usize = 5;
 
 impl Profile {
     /// Reads lines of pressure (hPa), temperature (K) and, where known, water vapour (ppmv) and
@@ -34,7 +37,7 @@ impl Profile {
     /// Atmosphere.
     ///
     /// # Errors
-    /// A line that can't be read; too few levels; levels out of order.
+    /// A line that can't be read; too few levels, or too few where clouds are; levels out of order.
     pub fn parse(text: &str, name: &str) -> Result<Profile, ProfileError> {
         let wrong = |line: usize, what: String| ProfileError { name: clean_text(name), line, what };
         let mut levels = Vec::new();
@@ -55,6 +58,15 @@ impl Profile {
         }
         if levels.windows(2).any(|pair| pair[0].pressure <= pair[1].pressure) {
             return Err(wrong(0, "the pressures are not in order".to_owned()));
+        }
+        let with_clouds = levels.iter().filter(|level| level.pressure >= LOWEST_PRESSURE).count();
+        if with_clouds < FEWEST_WITH_CLOUDS {
+            let what = format!(
+                "{with_clouds} of {} levels lie at {LOWEST_PRESSURE} hPa or more, where clouds are: give \
+                 at least {FEWEST_WITH_CLOUDS} there, from the ground upward",
+                levels.len()
+            );
+            return Err(wrong(0, what));
         }
         Ok(Profile { name: clean_text(name), air: Atmosphere::of_levels(&levels) })
     }
@@ -123,5 +135,14 @@ mod tests {
         assert!(error("1000, 290\n900, 280").what.contains("too few"));
         let swapped = text().replacen("1013.25", "800.00", 1);
         assert!(error(&swapped).what.contains("not in order"));
+        // Twenty levels of the stratosphere alone, and with four below them.
+        let thin = |from: usize| text().lines().skip(from).collect::<Vec<_>>().join("\n");
+        let high: String = (1..=20).map(|at| format!("{}, 220\n", 2.9 * f64::from(at))).collect();
+        assert!(error(&high).what.contains("0 of 20 levels lie at 60 hPa or more"));
+        let four: String =
+            [100, 200, 300, 400].iter().map(|at| format!("{at}, 250\n")).collect::<String>();
+        assert!(error(&format!("{high}{four}")).what.contains("4 of 24 levels"));
+        // From 8 km upward the air has fourteen levels below 60 hPa.
+        assert!(Profile::parse(&thin(8), "mine").is_ok());
     }
 }

@@ -26,6 +26,8 @@ const SIGNIFICANT: f64 = 3.0;
 const LOWEST_CLOUD: f64 = 700.0;
 /// Heights with a larger error than this, hPa, are none.
 const LARGEST_ERROR: f64 = 150.0;
+/// Pairs that differ by more than so many standard deviations see no single layer.
+const DISAGREEMENT: f64 = 3.0;
 /// How far the temperatures of the air may be wrong, K: of a standard atmosphere, of a given one.
 const STANDARD_ERROR: f64 = 4.0;
 const GIVEN_ERROR: f64 = 1.0;
@@ -120,6 +122,19 @@ impl CloudHeight {
             }
         }
     }
+}
+
+/// The height of the pair with the smallest error, and its error. Pairs see into different depths: below
+/// a single layer they agree, of two layers those that see less deep put more weight on the upper one.
+/// What they are apart by counts into the error, and where that is plainly more than noise there is no
+/// height. Pairs that come out where the ratio hardly changes say nothing.
+pub(super) fn agreed(pairs: Vec<(f64, f64)>) -> Option<(f64, f64)> {
+    let (height, sd) = pairs.iter().copied().min_by(|one, other| one.1.total_cmp(&other.1))?;
+    let others = || pairs.iter().filter(|other| other.0 <= LOWEST_CLOUD);
+    let disagrees =
+        |other: &&(f64, f64)| (other.0 - height).abs() > DISAGREEMENT * sd.hypot(other.1);
+    let apart = others().map(|other| (other.0 - height).abs()).fold(0.0, f64::max);
+    (!others().any(|other| disagrees(&other))).then_some((height, sd.hypot(apart)))
 }
 
 /// A granule's inputs.
@@ -231,7 +246,7 @@ impl Scene<'_> {
             let lost = modes[1..].iter().any(|mode| moved(mode).is_none());
             (!lost).then_some((height, (noise + of_air).sqrt()))
         });
-        let (height, sd) = heights.min_by(|one, other| one.1.total_cmp(&other.1))?;
+        let (height, sd) = agreed(heights.collect())?;
         let taken = at_pressure(&air.pressures, &modes[0].curves[WINDOW], height);
         let amount = forcing[WINDOW] / taken;
         let sound = height <= LOWEST_CLOUD
