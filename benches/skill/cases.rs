@@ -108,6 +108,12 @@ impl Granule {
         Granule::of(&review, &review.screen_so_far(rulebook), true)
     }
 
+    /// The place that a sample granule shows, from its name.
+    pub fn place(&self) -> String {
+        let name = self.name.trim_start_matches("synthetic_brindle_");
+        name.trim_end_matches(".nc").replace('_', " ")
+    }
+
     fn of(review: &Review, screened: &Screened, voices: bool) -> Result<Self, Mishap> {
         let truths = truths(review, screened.footprints())?;
         let cases = truths.into_iter().enumerate();

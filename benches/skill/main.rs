@@ -2,7 +2,7 @@
 //!
 //! `cargo bench --bench skill` makes perturbed granules and prints the tables of `docs/skill.md`;
 //! `-- --write` puts them there. `-- --fit` makes others and prints starting points and weights fitted
-//! to them. `--keep DIR` keeps the granules and takes those that are there, `--rules FILE` takes another
+//! to them; `-- --validate` measures on a third set, to choose with. `--keep DIR` keeps the granules and takes those that are there, `--rules FILE` takes another
 //! rulebook, and files in place of a set may be named. Synthetic skill is not real skill.
 #![allow(clippy::print_stdout)]
 
@@ -26,6 +26,7 @@ type Mishap = Box<dyn std::error::Error>;
 #[derive(Default)]
 struct Wish {
     fit: bool,
+    validate: bool,
     write: bool,
     keep: Option<PathBuf>,
     rules: Option<PathBuf>,
@@ -39,6 +40,7 @@ fn wish() -> Result<Wish, Mishap> {
         let mut value = || arguments.next().ok_or(format!("{argument} wants a value"));
         match argument.as_str() {
             "--fit" => wish.fit = true,
+            "--validate" => wish.validate = true,
             "--write" => wish.write = true,
             "--keep" => wish.keep = Some(value()?.into()),
             "--rules" => wish.rules = Some(value()?.into()),
@@ -66,7 +68,8 @@ fn main() -> Result<(), Mishap> {
         print!("{}", fit::weights(&rulebook, &granules));
         return Ok(());
     }
-    let tables = tables::all(&rulebook, &granules);
+    let samples = screened(&samples()?, &rulebook, false)?;
+    let tables = tables::all(&rulebook, &granules, &samples);
     match wish.write {
         true => write(&tables),
         false => {
@@ -86,8 +89,24 @@ fn write(tables: &str) -> Result<(), Mishap> {
     Ok(std::fs::write(path, format!("{ours}{BEFORE}\n\n{tables}"))?)
 }
 
+/// The granules that come with the program.
+fn samples() -> Result<Vec<PathBuf>, Mishap> {
+    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("sample_granules");
+    let mut files = Vec::new();
+    for entry in std::fs::read_dir(folder)? {
+        files
+            .extend(Some(entry?.path()).filter(|path| path.extension().is_some_and(|e| e == "nc")));
+    }
+    files.sort();
+    Ok(files)
+}
+
 fn of_set(wish: &Wish, rulebook: &Rulebook) -> Result<Vec<Granule>, Mishap> {
-    let set = if wish.fit { sets::CALIBRATION } else { sets::SKILL };
+    let set = match (wish.fit, wish.validate) {
+        (true, _) => sets::CALIBRATION,
+        (_, true) => sets::VALIDATION,
+        _ => sets::SKILL,
+    };
     let passing = tempfile::tempdir()?;
     let folder: &Path = wish.keep.as_deref().unwrap_or(passing.path());
     let mut granules = Vec::new();

@@ -19,7 +19,7 @@ const SCENES: [&str; 7] = [
 ];
 
 /// All tables.
-pub fn all(rulebook: &Rulebook, granules: &[Granule]) -> String {
+pub fn all(rulebook: &Rulebook, granules: &[Granule], samples: &[Granule]) -> String {
     let mut text = format!(
         "Measured with rulebook `{}`, fingerprint `{}`, on {} granules with {} footprints.\n",
         rulebook.name,
@@ -30,6 +30,7 @@ pub fn all(rulebook: &Rulebook, granules: &[Granule]) -> String {
     for (title, table) in [
         ("What has a limit, by climate", climates(granules)),
         ("The same and more, by scene", scenes(granules)),
+        ("The sample granules", SAMPLES.to_owned() + &of_samples(samples)),
         ("Planted defects", defects(granules)),
         ("Hits and misses", confusion(granules)),
         ("Each test alone", single(rulebook, granules)),
@@ -41,6 +42,10 @@ pub fn all(rulebook: &Rulebook, granules: &[Granule]) -> String {
     text
 }
 
+const SAMPLES: &str = "
+Four granules that come with the program, as they are drawn, without a climate of their own and with
+instruments of their own. They are known to everybody, so they are no proof: they show what a user sees first.
+";
 const RELIABILITY: &str = "
 How often a flag holds where the tests give it a probability: in the bar, `#` is how often it held, `|` how often
 it was promised. Footprints of one cloud are not independent, so the counts promise more than they hold.
@@ -119,6 +124,22 @@ fn scenes(granules: &[Granule]) -> String {
             }
         }
     }
+    text
+}
+
+/// Everything, sample by sample; questions down, for there are few granules.
+fn of_samples(samples: &[Granule]) -> String {
+    let heads: Vec<String> = samples.iter().map(|granule| granule.place()).collect();
+    let rule = vec!["---"; heads.len() + 1].join(" | ");
+    let mut text = format!("\n| question | {} |\n| {rule} |\n", heads.join(" | "));
+    for question in ASKED.iter().copied().chain(&MORE) {
+        let answers: Vec<String> =
+            samples.iter().map(|granule| question.answer([granule]).to_string()).collect();
+        let _ = writeln!(text, "| {} | {} |", question.head, answers.join(" | "));
+    }
+    let channels: Vec<String> =
+        samples.iter().map(|granule| granule.defective_channels.to_string()).collect();
+    let _ = writeln!(text, "| channels with a defect: found | {} |", channels.join(" | "));
     text
 }
 
