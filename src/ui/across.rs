@@ -13,11 +13,10 @@ use crate::system::Cancel;
 use crate::tray::Standing;
 
 use super::app::App;
-use super::by_rule;
 use super::colour::Tone;
 use super::jobs::Job;
 use super::keys::Action;
-use super::overlay::{Deed, Overlay};
+use super::overlay::Deed;
 use super::spreading::{self, Reach};
 use super::turning;
 
@@ -104,11 +103,6 @@ impl Across {
         !matches!(self.errand, Errand::Compare { .. })
     }
 
-    /// Ends it.
-    pub fn end(&self) {
-        self.cancel.cancel();
-    }
-
     /// How far it has come: "comparing 3 of 11".
     pub fn words(&self) -> String {
         let verb = match &self.errand {
@@ -137,14 +131,19 @@ pub fn is_writing(app: &mut App) -> bool {
     words.is_some()
 }
 
+/// Ends an errand that only looks: what it was about is on show no longer.
+pub fn end_looking(app: &mut App) {
+    if let Some(across) = app.across.take_if(|across| !across.writes()) {
+        across.cancel.cancel();
+    }
+}
+
 /// Runs an errand through these entries; one that only looks makes room for it.
 pub fn begin(app: &mut App, errand: Errand, entries: &[usize]) -> Vec<Job> {
     if entries.is_empty() || is_writing(app) {
         return Vec::new();
     }
-    if let Some(before) = app.across.take() {
-        before.cancel.cancel();
-    }
+    end_looking(app);
     let request = app.request();
     let path = |entry: &usize| Some((*entry, app.tray.entry(*entry)?.path.clone()));
     let paths: Vec<(usize, PathBuf)> = entries.iter().filter_map(path).collect();
@@ -202,7 +201,6 @@ fn finish(app: &mut App) -> Vec<Job> {
     let Some(across) = app.across.take() else { return Vec::new() };
     let granules = across.all - across.faults.len();
     let undo = app.keymap.hint(Action::Undo);
-    let mut jobs = Vec::new();
     match &across.errand {
         Errand::Compare { .. } => spreading::say_in_tray(app),
         Errand::Decide { deed, at, .. } => {
@@ -216,7 +214,7 @@ fn finish(app: &mut App) -> Vec<Job> {
             let verb = if *back { "taken back" } else { "put back" };
             app.say(format!("{}; {verb} in {granules} more granules", app.message.0));
         }
-        Errand::Screen if matches!(app.overlay, Overlay::None) => jobs = by_rule::ask(app),
+        // The question would take the next key, which may be meant for something else.
         Errand::Screen => {
             let sign = app.keymap.hint(Action::ByRule);
             app.say(format!("the tests have run in {granules} granules; {sign} signs off by rule"));
@@ -228,10 +226,8 @@ fn finish(app: &mut App) -> Vec<Job> {
         let said = app.message.0.clone();
         app.message = (format!("{said}; not in {first}{more}"), Tone::Bad);
     }
-    if app.leaving {
-        jobs.extend(turning::leave(app));
-    }
-    jobs
+    turning::leave_if_done(app);
+    Vec::new()
 }
 
 /// Ends the errand under way; false where there is none. What was decided stays.

@@ -1,6 +1,5 @@
 //! What the answers of jobs do to the state. An answer that is no longer waited for is dropped.
 
-use std::path::PathBuf;
 use std::sync::Arc;
 
 use crate::flags::LedgerReading;
@@ -14,6 +13,7 @@ use super::bench::{Bench, Quality, RecordState};
 use super::by_rule;
 use super::colour::Tone;
 use super::deciding;
+use super::exporting;
 use super::jobs::{Answer, Job};
 use super::keys::Action;
 use super::ledger;
@@ -34,7 +34,7 @@ use super::undoing;
 pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
     match answer {
         Answer::Standing { entry, found } => standing(app, entry, found),
-        Answer::SignedOff { entry, found } => by_rule::signed(app, entry, found),
+        Answer::SignedOff { request, entry, found } => by_rule::signed(app, request, entry, found),
         Answer::Opened { request, found } => opened(app, request, found),
         Answer::Filling { request, share, of_layer } => filling(app, request, share, of_layer),
         Answer::Filled { request, found } => filled(app, request, found),
@@ -62,7 +62,7 @@ pub fn take(app: &mut App, answer: Answer) -> Vec<Job> {
             }
             Vec::new()
         }
-        Answer::Exported { request, found } => exported(app, request, found),
+        Answer::Exported { request, found } => exporting::exported(app, request, found),
         Answer::Against { request, found } => spreading::against_found(app, request, found),
         Answer::Across { request, entry, found } => across::take(app, request, entry, found),
         Answer::AcrossFailed { request, why } => {
@@ -365,29 +365,6 @@ fn pinned(app: &mut App, request: u64, found: Vec<Spectrum>) -> Vec<Job> {
             pin.spectrum = Some(spectrum);
         }
     }
-    Vec::new()
-}
-
-fn exported(
-    app: &mut App,
-    request: u64,
-    found: Result<(PathBuf, Vec<String>), String>,
-) -> Vec<Job> {
-    let Some(bench) = awaited(app, |bench| bench.awaited.export == request) else {
-        return Vec::new();
-    };
-    bench.awaited.export = 0;
-    app.message = match found {
-        Ok((path, messages)) => {
-            let path = crate::system::clean_text(&path.to_string_lossy());
-            let words = match messages.first() {
-                Some(message) => format!("exported to {path}: {message}"),
-                None => format!("exported to {path}"),
-            };
-            (words, Tone::Good)
-        }
-        Err(why) => (format!("not exported: {why}"), Tone::Bad),
-    };
     Vec::new()
 }
 

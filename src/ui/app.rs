@@ -20,6 +20,7 @@ use super::keys::Action;
 use super::ledger::LedgerLook;
 use super::line::History;
 use super::overlay::{Deed, Overlay};
+use super::owed::Owed;
 use super::panes::{Arrangement, Pane, ScreenLayout};
 use super::spreading::Known;
 use super::strip::Strip;
@@ -110,6 +111,8 @@ pub struct App {
     pub rulebook_changes: Vec<RulebookChange>,
     /// Lines of the Evidence that are scrolled away.
     pub evidence_scroll: usize,
+    /// What leaving waits for beside decisions.
+    pub owed: Owed,
     /// What is being done in granules that are not on the table.
     pub across: Option<Across>,
     /// Footprints that persons have decided in granules whose spectra were compared.
@@ -169,6 +172,7 @@ impl App {
             ledger: LedgerLook::default(),
             rulebook_changes: Vec::new(),
             evidence_scroll: 0,
+            owed: Owed::default(),
             across: None,
             known: Known::default(),
             message: (String::new(), Tone::Plain),
@@ -236,6 +240,12 @@ impl App {
     }
 
     /// All records that may still be writing: the table's and those left behind.
+    pub fn records(&self) -> impl Iterator<Item = &Record> {
+        let table = self.bench().and_then(|bench| bench.record.open());
+        table.into_iter().chain(&self.left)
+    }
+
+    /// The same, to hear what they have to say.
     pub fn records_mut(&mut self) -> impl Iterator<Item = &mut Record> {
         let table = match &mut self.table {
             Table::Bench(bench) => bench.record.open_mut(),
@@ -272,8 +282,7 @@ impl App {
 
     /// Decisions that are not known to be on the disk, in all granules.
     pub fn pending(&self) -> usize {
-        let table = self.bench().and_then(|bench| bench.record.open()).map_or(0, Record::pending);
-        table + self.left.iter().map(Record::pending).sum::<usize>()
+        self.records().map(Record::pending).sum()
     }
 
     /// Whether something runs beside the keys that tells how far it is.
@@ -283,8 +292,7 @@ impl App {
 
     /// Why decisions could not be written, if they could not.
     pub fn write_failure(&self) -> Option<&str> {
-        let table = self.bench().and_then(|bench| bench.record.open());
-        table.into_iter().chain(&self.left).find_map(Record::failure)
+        self.records().find_map(Record::failure)
     }
 
     /// Ends at once with the exit code that belongs to the reason.

@@ -1,6 +1,5 @@
 //! The granule on the table, as the screen holds it.
 
-use std::path::PathBuf;
 use std::sync::Arc;
 
 use crate::flags::{FootprintSet, screened_by};
@@ -41,8 +40,10 @@ pub struct Bench {
     pub entry: usize,
     /// The granule itself.
     pub review: Arc<Review>,
-    /// Where its footprints lie on the map.
-    pub placement: Placement,
+    /// Where its footprints lie on the map that is shown.
+    pub placement: Arc<Placement>,
+    /// Where they lie in the instrument's order, whatever map is shown.
+    pub order: Arc<Placement>,
     /// Its channels in one order.
     pub channels: Channels,
     /// What was decided.
@@ -107,8 +108,6 @@ pub struct Bench {
     pub awaited: Awaited,
     /// What ends jobs whose answers are no longer waited for.
     pub overtaken: Overtaken,
-    /// An export that waits for the last decisions to be on the disk: into which folder.
-    pub export_waits: Option<PathBuf>,
     /// A key wanted to decide something while the ledgers were still being read.
     pub asked_early: bool,
     /// A key has changed what is on show, so that a kept place comes too late.
@@ -119,7 +118,7 @@ impl Bench {
     /// A granule just put on the table, with `first_layer` or the first suggested one asked for.
     pub fn new(entry: usize, review: Arc<Review>, first_layer: Option<String>) -> Bench {
         let granule = review.granule();
-        let placement = in_order(&review);
+        let order = Arc::new(in_order(&review));
         let channels = Channels::of(granule.bands().iter().map(|band| &band.axis));
         let (low, high) = channels.range().unwrap_or((0.0, 1.0));
         let suggested = review.suggested_layers();
@@ -134,7 +133,8 @@ impl Bench {
         let windows = review.window_channels();
         Bench {
             entry,
-            placement,
+            placement: Arc::clone(&order),
+            order,
             channel: channels.nearest(FIRST_CHANNEL),
             channels,
             record: RecordState::Reading,
@@ -167,7 +167,6 @@ impl Bench {
             behind_first_picture: Vec::new(),
             awaited: Awaited::default(),
             overtaken: Overtaken::default(),
-            export_waits: None,
             asked_early: false,
             touched: false,
             review,
@@ -193,9 +192,10 @@ impl Bench {
             true => {
                 let place = self.review.granule().geolocation();
                 let known = place.latitude.as_deref().zip(place.longitude.as_deref());
-                known.and_then(|(latitude, longitude)| Placement::geographic(latitude, longitude))
+                let placed = known.and_then(|(north, east)| Placement::geographic(north, east));
+                placed.map(Arc::new)
             }
-            false => Some(in_order(&self.review)),
+            false => Some(Arc::clone(&self.order)),
         };
         let Some(placement) = placement else { return false };
         (self.placement, self.geographic) = (placement, geographic);

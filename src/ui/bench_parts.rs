@@ -193,10 +193,6 @@ pub struct Awaited {
     pub alike: u64,
     /// Measuring the spectra.
     pub measured: u64,
-    /// Taking a threshold over into the rulebook.
-    pub adopt: u64,
     /// Finding footprints to select.
     pub select: u64,
-    /// Writing an export.
-    pub export: u64,
 }

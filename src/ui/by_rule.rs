@@ -12,6 +12,8 @@ use super::deciding;
 use super::jobs::Job;
 use super::key::{Code, Key};
 use super::overlay::Overlay;
+use super::owed;
+use super::turning;
 use super::update::is_yes;
 
 /// Names that a summary lists before it counts the rest.
@@ -51,7 +53,8 @@ pub fn answer(app: &mut App, key: Key, offer: Offer) -> Vec<Job> {
     }
 }
 
-/// The tests run over those that are not screened by the rulebook in force; then it is offered anew.
+/// The tests run over those that are not screened by the rulebook in force. Where they run beside the
+/// keys, the key that asks offers anew what is within the limits then.
 /// What they say of the granule on the table is there already, or will be.
 fn screen(app: &mut App, offer: &Offer) -> Vec<Job> {
     if across::is_writing(app) {
@@ -101,20 +104,39 @@ fn sign(app: &mut App, offer: &Offer) -> Vec<Job> {
         return Vec::new();
     }
     app.say(format!("signing {} granules off…", offer.within.len()));
-    others.into_iter().map(|(entry, path)| Job::SignOff { entry, path }).collect()
+    let job = |(entry, path): (usize, PathBuf)| {
+        let request = app.request();
+        app.owed.begin(request, format!("the sign-off of {}", name(app, entry)));
+        Job::SignOff { request, entry, path }
+    };
+    others.into_iter().map(job).collect()
 }
 
 /// A granule was signed off beside the keys, or was not.
-pub fn signed(app: &mut App, entry: usize, found: Result<Standing, String>) -> Vec<Job> {
-    let name = app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default();
+pub fn signed(
+    app: &mut App,
+    request: u64,
+    entry: usize,
+    found: Result<Standing, String>,
+) -> Vec<Job> {
+    let name = name(app, entry);
+    app.owed.end(request);
     match found {
         Ok(standing) => {
             app.tray.set_standing(entry, standing);
-            app.say(format!("{name}: signed off by rule"));
+            // One that was not signed off is told until the next key.
+            if app.message.1 != Tone::Bad {
+                app.say(format!("{name}: signed off by rule"));
+            }
         }
-        Err(why) => app.message = (format!("{name}: not signed off: {why}"), Tone::Bad),
+        Err(why) => owed::failed(app, format!("{name}: not signed off: {why}")),
     }
+    turning::leave_if_done(app);
     Vec::new()
+}
+
+fn name(app: &App, entry: usize) -> String {
+    app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default()
 }
 
 /// What is offered, a line each.

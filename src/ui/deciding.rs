@@ -1,7 +1,4 @@
-//! Decisions from keys: flags, withdrawals, undo and redo, signing off, export.
-
-use std::path::PathBuf;
-use std::sync::Arc;
+//! Decisions from keys: flags, withdrawals, undo and redo, signing off.
 
 use jiff::Timestamp;
 
@@ -154,8 +151,13 @@ pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
     }
     app.last_deed = Some(again.clone());
     if let Some(bench) = app.bench_mut() {
-        bench.drop_channel_pick();
-        bench.selecting.clear();
+        // What the deed was not about stays to be decided.
+        match again {
+            Deed::FlagChannels { .. } => {
+                bench.drop_channel_pick();
+            }
+            _ => bench.selecting.clear(),
+        }
     }
     let Some(step) = step else { return Vec::new() };
     let entries: Vec<usize> = elsewhere.keys().copied().collect();
@@ -201,32 +203,6 @@ fn assess(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench() else { return no_granule(app) };
     let selection = bench.selection();
     carry_out(app, Deed::Assess, selection)
-}
-
-/// Exports the mask of the granule on the table, into `folder` or the campaign's own, as soon as
-/// the last decisions are on the disk: a mask is made from what the ledgers hold.
-pub fn export(app: &mut App, folder: Option<String>) -> Vec<Job> {
-    let folder = folder.map_or_else(|| app.export_folder(), PathBuf::from);
-    let Some(bench) = app.bench_mut() else { return no_granule(app) };
-    if bench.record.open().is_none() {
-        return not_ready(app);
-    }
-    bench.export_waits = Some(folder);
-    app.say("exporting…");
-    export_if_kept(app)
-}
-
-/// The export that waits, if nothing is pending any more.
-pub fn export_if_kept(app: &mut App) -> Vec<Job> {
-    let request = app.request();
-    let inputs = app.tray.entries().iter().map(|entry| entry.path.clone()).collect();
-    let Some(bench) = app.bench_mut() else { return Vec::new() };
-    if bench.record.open().is_none_or(|record| record.pending() > 0) {
-        return Vec::new();
-    }
-    let Some(folder) = bench.export_waits.take() else { return Vec::new() };
-    bench.awaited.export = request;
-    vec![Job::Export { request, review: Arc::clone(&bench.review), folder, inputs }]
 }
 
 /// A decision in a few words.

@@ -73,6 +73,8 @@ pub enum Answer {
     },
     /// A granule was signed off by rule, or was not.
     SignedOff {
+        /// The request.
+        request: u64,
         /// The entry.
         entry: usize,
         /// What its ledgers say now.

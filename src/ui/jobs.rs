@@ -78,6 +78,8 @@ pub enum Job {
     },
     /// Sign a granule off that is not on the table, if it still lies within the limits.
     SignOff {
+        /// The request.
+        request: u64,
         /// The entry of the Tray.
         entry: usize,
         /// The file.

@@ -136,7 +136,6 @@ fn take_change_back(app: &mut App, place: usize) -> Vec<Job> {
     let Some(change) = app.rulebook_changes.get(place) else { return Vec::new() };
     let why = Some(format!("takes back the change by {}", change.person));
     let change = ThresholdChange::taking_back(change, why, now);
-    let Some(bench) = app.bench_mut() else { return Vec::new() };
-    bench.awaited.adopt = request;
+    app.owed.begin(request, "the rulebook".to_owned());
     vec![Job::Adopt { request, change }]
 }

@@ -125,7 +125,11 @@ pub fn other_layer(app: &mut App) -> Vec<Job> {
 pub fn geographic(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     let wanted = !bench.geographic;
-    let words = match (bench.place_geographically(wanted), wanted) {
+    let placed = bench.place_geographically(wanted);
+    if placed {
+        bench.selecting.drop_map_shape();
+    }
+    let words = match (placed, wanted) {
         (false, _) => "the file gives no latitudes and longitudes to go by",
         (true, true) => "by latitude and longitude, north is up",
         (true, false) => "in the order of the instrument",

@@ -85,10 +85,20 @@ fn brush(app: &mut App, action: Action) -> Vec<Job> {
 fn keep_shape(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     if let Some(shape) = bench.shape_selection() {
-        bench.selecting.take(bench.selecting.join, shape);
+        let join = bench.selecting.join;
+        join_to_selection(app, join, shape, None);
     }
-    tell(app, None);
     Vec::new()
+}
+
+/// Joins to what is selected, and says what came of it.
+fn join_to_selection(app: &mut App, join: Join, selection: Selection, note: Option<String>) {
+    let Some(bench) = app.bench_mut() else { return };
+    let from_nothing = join.takes_away() && bench.selecting.kept().is_none();
+    bench.selecting.take(join, selection);
+    let other = app.keymap.hint(Action::Join);
+    let why = || format!("nothing was there to take it from; {other} joins otherwise");
+    tell(app, if from_nothing { Some(why()) } else { note });
 }
 
 fn invert(app: &mut App) -> Vec<Job> {
@@ -235,10 +245,8 @@ pub fn selected(app: &mut App, request: u64, join: Join, found: Found) -> Vec<Jo
 }
 
 fn take(app: &mut App, join: Join, mut selection: Selection, note: Option<String>) {
-    let Some(bench) = app.bench_mut() else { return };
     selection.words = format!("{} {}", selection.footprints.len(), selection.words);
-    bench.selecting.take(join, selection);
-    tell(app, note);
+    join_to_selection(app, join, selection, note);
 }
 
 /// A drag begins a box, or sets the corners of the polygon that is being drawn.

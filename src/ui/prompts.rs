@@ -127,7 +127,10 @@ fn answer_leave(app: &mut App, key: Key) -> Vec<Job> {
         _ if is_yes(key) => return turning::leave_anyway(app),
         Code::Char('n' | 'N') | Code::Esc => {
             app.leaving = false;
-            app.say("stays; the decisions are tried again with the next one");
+            app.say(match app.pending() {
+                0 => "stays",
+                _ => "stays; the decisions are tried again with the next one",
+            });
         }
         Code::Char('r' | 'R') => {
             app.records_mut().for_each(crate::review::Record::retry);

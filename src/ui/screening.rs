@@ -10,6 +10,7 @@ use super::colour::Tone;
 use super::jobs::Job;
 use super::keys::Action;
 use super::looking;
+use super::selecting::Shape;
 use super::spreading::{self, Source};
 use super::{deciding, doubting, precedents};
 
@@ -34,6 +35,7 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
         return Vec::new();
     };
     bench.awaited.screen = 0;
+    let drawn = bench.selecting.shape.clone();
     // A threshold in hand belongs to a test of the run before, and may be counted from its limit.
     let in_hand = bench.spread_test();
     let in_hand = in_hand.map(|(before, place, _)| before.rulebook.tests[place].name.clone());
@@ -54,7 +56,7 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
             jobs.extend(doubting::tests_have_run(app));
             jobs.extend(precedents::measure(app));
             if let Some(test) = in_hand {
-                jobs.extend(take_again(app, &test));
+                jobs.extend(take_again(app, &test, drawn));
             }
             return jobs;
         }
@@ -67,10 +69,15 @@ pub fn take(app: &mut App, request: u64, found: Result<Arc<Screened>, String>) -
     Vec::new()
 }
 
-/// Takes the test that was in hand before the tests ran in hand again, with nothing tried on it.
-fn take_again(app: &mut App, test: &str) -> Vec<Job> {
+/// Takes the test that was in hand before the tests ran in hand again, with nothing tried on it. Its
+/// threshold selects again only where it did: whoever let go of it does not decide about it.
+fn take_again(app: &mut App, test: &str, drawn: Option<Shape>) -> Vec<Job> {
     let (focus, message) = (app.focus(), app.message.clone());
     let jobs = spreading::take_test(app, test);
+    if let Some(bench) = app.bench_mut().filter(|_| drawn != Some(Shape::Threshold)) {
+        bench.selecting.shape = drawn;
+        bench.selecting.drop_spread_shape();
+    }
     app.panes.focus_on(focus);
     app.message = message;
     jobs

@@ -1,8 +1,10 @@
 //! From granule to granule, and out of the program.
 
+use super::across;
 use super::app::{App, Direction, Table};
 use super::bench::RecordState;
 use super::colour::Tone;
+use super::exporting;
 use super::jobs::Job;
 use super::keys::Action;
 use super::overlay::Overlay;
@@ -56,13 +58,6 @@ fn none_is_left(app: &mut App) -> Vec<Job> {
 
 /// Next, previous, next not signed off, or the one under the Tray's cursor.
 pub fn turn(app: &mut App, action: Action) -> Vec<Job> {
-    // An export that waits for the last decisions would be lost with the granule. Where they
-    // cannot be written at all, waiting would hold the person here for ever.
-    let export_waits = app.bench().is_some_and(|bench| bench.export_waits.is_some());
-    if export_waits && app.write_failure().is_none() {
-        app.say("one moment: the mask is written as soon as the last decision is kept");
-        return Vec::new();
-    }
     // With nothing on the table, the Tray's own cursor tells where one is.
     let on_table = app.current_entry();
     let here = on_table.or_else(|| (!app.tray.is_empty()).then_some(app.tray_cursor));
@@ -163,9 +158,7 @@ fn put_away(app: &mut App) {
     bench.tests.cancel.cancel();
     bench.overtaken.end_all();
     // Comparing is about a footprint of it; what is being decided goes on.
-    if let Some(across) = app.across.take_if(|across| !across.writes()) {
-        across.end();
-    }
+    across::end_looking(app);
     let own = bench.record.open().map(|record| Standing {
         own: record.own_times(),
         steps: record.own_steps(),
@@ -190,13 +183,18 @@ pub fn keep_place(app: &App) -> Vec<Job> {
     vec![Job::Keep { identity, place }]
 }
 
-/// Leaves, once everything is written.
+/// Leaves, once everything is written. Asked once more, it asks whether to wait no longer for what
+/// may hang on a disk.
 pub fn leave(app: &mut App) -> Vec<Job> {
-    app.leaving = true;
-    leave_if_written(app);
+    let again = std::mem::replace(&mut app.leaving, true);
+    leave_if_done(app);
+    if again && app.ended.is_none() && !app.owed.is_empty() {
+        app.overlay = Overlay::LeaveAnyway;
+    }
     if app.ended.is_none() && !matches!(app.overlay, Overlay::LeaveAnyway) {
         let words = match &app.across {
             Some(across) => format!("{}, then leaving; Esc ends it", across.words()),
+            None if app.pending() == 0 => format!("{}, then leaving", app.owed.words()),
             None => format!("writing {} decisions…", app.pending()),
         };
         app.say(words);
@@ -210,14 +208,17 @@ pub fn leave_anyway(app: &mut App) -> Vec<Job> {
     Vec::new()
 }
 
-fn leave_if_written(app: &mut App) {
-    if app.across.as_ref().is_some_and(|across| across.writes()) {
+/// Leaves where that was asked for and nothing is left to wait for.
+pub fn leave_if_done(app: &mut App) {
+    if !app.leaving || app.across.as_ref().is_some_and(|across| across.writes()) {
         return;
     }
-    if app.pending() == 0 {
+    if app.pending() > 0 {
+        if app.write_failure().is_some() {
+            app.overlay = Overlay::LeaveAnyway;
+        }
+    } else if app.owed.is_empty() {
         app.ended = Some(0);
-    } else if app.write_failure().is_some() {
-        app.overlay = Overlay::LeaveAnyway;
     }
 }
 
@@ -235,10 +236,8 @@ pub fn ledger_moved(app: &mut App) -> Vec<Job> {
     if let Some(why) = app.write_failure() {
         app.message = (why.to_owned(), Tone::Bad);
     }
-    if app.leaving {
-        leave_if_written(app);
-    }
-    super::deciding::export_if_kept(app)
+    leave_if_done(app);
+    exporting::start_kept(app)
 }
 
 /// Looks whether others have decided something about the granule on the table.

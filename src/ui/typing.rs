@@ -6,6 +6,7 @@ use super::app::App;
 use super::channel_flags;
 use super::command::{self, Command, Known};
 use super::deciding;
+use super::exporting;
 use super::jobs::Job;
 use super::key::{Code, Key};
 use super::keys::Action;
@@ -228,7 +229,7 @@ fn run(app: &mut App, command: Command) -> Vec<Job> {
         }),
         Command::Comment(text) => to_selection(app, Deed::Comment(text)),
         Command::Spot(count) => super::spot::begin(app, count),
-        Command::Export(folder) => deciding::export(app, folder),
+        Command::Export(folder) => exporting::export(app, folder),
     }
 }
 

@@ -9,8 +9,9 @@ use super::keys::Action;
 use super::overlay::Overlay;
 use super::panes::Pane;
 use super::{
-    across, answers, by_rule, channel_flags, deciding, doubting, ledger, looking, moving, picking,
-    precedents, prompts, screening, spot, spreading, strip, tracing, turning, typing,
+    across, answers, by_rule, channel_flags, deciding, doubting, exporting, ledger, looking,
+    moving, picking, precedents, prompts, screening, spot, spreading, strip, tracing, turning,
+    typing,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -118,7 +119,7 @@ pub fn act(app: &mut App, action: Action) -> Vec<Job> {
         A::SpotCheck => spot::begin(app, spot::USUAL),
         A::RunTests => screening::start(app),
         A::NextCase | A::PreviousCase | A::Accept | A::Overrule => doubting::doubt(app, action),
-        A::Export => deciding::export(app, None),
+        A::Export => exporting::export(app, None),
         A::AskLayer
         | A::AskAgainst
         | A::AskChannel

@@ -63,8 +63,9 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
         Job::Standing { entry, path } => {
             send(Answer::Standing { entry: *entry, found: standing(path, outside) });
         }
-        Job::SignOff { entry, path } => {
-            send(Answer::SignedOff { entry: *entry, found: sign_off(path, outside) });
+        Job::SignOff { request, entry, path } => {
+            let found = sign_off(path, outside);
+            send(Answer::SignedOff { request: *request, entry: *entry, found });
         }
         Job::Open { request, path } => {
             let found = Review::open(&outside.opening, path);
@@ -156,7 +157,9 @@ pub fn failed(job: &Job, why: &str) -> Option<Answer> {
         Job::Measure { request, .. } => Answer::Measured { request: *request, found: Err(why()) },
         Job::Adopt { request, .. } => Answer::Adopted { request: *request, found: Err(why()) },
         Job::Standing { entry, .. } => Answer::Standing { entry: *entry, found: Err(why()) },
-        Job::SignOff { entry, .. } => Answer::SignedOff { entry: *entry, found: Err(why()) },
+        Job::SignOff { request, entry, .. } => {
+            Answer::SignedOff { request: *request, entry: *entry, found: Err(why()) }
+        }
         Job::Open { request, .. } => Answer::Opened { request: *request, found: Err(why()) },
         Job::Fill { request, .. } => Answer::Filled { request: *request, found: Err(why()) },
         Job::Record { request, .. } => Answer::Record { request: *request, found: Err(why()) },

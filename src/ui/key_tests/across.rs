@@ -1,9 +1,9 @@
 //! What goes through all granules of the Tray: start state, keys, expected. Footprint n of each
 //! granule is a black body of 250 + n kelvins.
 
-use super::append_byte;
+use super::{ALL, append_byte};
 use crate::ui::spreading::Reach;
-use crate::ui::trial::{Place, Trial};
+use crate::ui::trial::{POSITIONS, Place, Trial};
 
 const NAMES: [&str; 3] = ["a.nc", "b.nc", "c.nc"];
 
@@ -81,6 +81,33 @@ fn a_comparison_ends_with_esc_and_its_answers_come_too_late() {
     assert_eq!(trial.bench().spread.reach, Reach::Here);
     assert!(trial.bench().spread.alike.as_ref().unwrap().elsewhere.is_empty());
     assert!(trial.app.across.is_none());
+}
+
+#[test]
+fn what_comes_of_an_old_comparison_does_not_stand_for_a_new_one() {
+    let place = three_granules();
+    let mut trial = place.review(&NAMES);
+    trial.keys("L W");
+    trial.press("W");
+    // Measured already, so the other footprint is compared at once.
+    ["2", "Down", "L"].iter().for_each(|key| trial.press(key));
+    trial.settle();
+    assert!(trial.bench().spread.alike.as_ref().unwrap().elsewhere.is_empty());
+    trial.keys("W W");
+    let elsewhere = &trial.bench().spread.alike.as_ref().unwrap().elsewhere;
+    let here = POSITIONS;
+    assert!(elsewhere.len() == 2 && elsewhere.values().all(|far| far[here].abs() < 1e-9));
+}
+
+#[test]
+fn the_side_that_is_meant_is_the_same_in_all_granules() {
+    let place = three_granules();
+    let mut trial = like_in_tray(&place);
+    trial.keys("J");
+    let selection = trial.bench().selection();
+    assert_eq!(selection.footprints.len(), ALL - 5);
+    assert!(selection.elsewhere.values().all(|set| *set == selection.footprints));
+    assert!(selection.words.contains("> 2.5"), "{}", selection.words);
 }
 
 #[test]

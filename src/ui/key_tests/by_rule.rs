@@ -9,7 +9,7 @@ use crate::ui::trial::{Place, Trial};
 const NAMES: [&str; 3] = ["a.nc", "b.nc", "c.nc"];
 
 /// Two granules are screened, the third is not.
-fn two_of_three_screened(settings: &str) -> Place {
+pub fn two_of_three_screened(settings: &str) -> Place {
     let place = place(&NAMES);
     append_byte(&place.path("b.nc"));
     (0..2).for_each(|_| append_byte(&place.path("c.nc")));
@@ -20,7 +20,7 @@ fn two_of_three_screened(settings: &str) -> Place {
     place
 }
 
-fn spot_check(trial: &mut Trial) {
+pub fn spot_check(trial: &mut Trial) {
     trial.keys("@");
     while trial.bench().is_blind() {
         let kept_away = !(9..26).contains(&trial.bench().cursor);
@@ -92,6 +92,10 @@ fn granules_that_were_not_screened_are_screened_on_request_and_offered_anew() {
     trial.press("t");
     assert!(trial.screen(120, 40).contains("tests in 1 of 1"), "{}", trial.screen(120, 40));
     trial.settle();
+    assert!(trial.message().contains("* signs off by rule"), "{}", trial.message());
+    trial.keys("y");
+    assert!(states(&trial).iter().all(|state| *state != GranuleState::SignedOff), "not asked yet");
+    trial.keys("u *");
     let text = trial.screen(120, 40);
     assert!(text.contains("within: 3: a.nc, b.nc, c.nc"), "{text}");
     trial.keys("y");

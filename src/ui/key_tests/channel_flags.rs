@@ -47,6 +47,17 @@ fn a_reason_is_kept_and_escape_lets_go() {
 }
 
 #[test]
+fn a_flag_of_channels_keeps_the_footprints_that_are_selected_and_the_reverse() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("v Right v H n");
+    let kept = trial.bench().selecting.kept();
+    assert_eq!(kept.map(|kept| kept.footprints.len()), Some(2));
+    trial.keys("I . f c");
+    assert_eq!(trial.flagged("cloudy"), [0, 1]);
+    assert!(trial.bench().has_channel_pick() && !trial.bench().selecting.is_on());
+}
+
+#[test]
 fn channels_over_their_noise_need_a_measured_noise() {
     let (_place, mut trial) = one_granule();
     trial.types(":noisy 3").keys("Enter");

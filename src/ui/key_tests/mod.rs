@@ -5,6 +5,7 @@ mod channel_flags;
 mod by_rule;
 mod deciding;
 mod doubting;
+mod leaving;
 mod looking;
 mod moving;
 mod precedents;

@@ -76,6 +76,27 @@ fn boxes_are_joined_and_the_count_is_always_there() {
 }
 
 #[test]
+fn nothing_is_left_of_nothing() {
+    let (_place, mut trial) = one_granule();
+    for _ in 0..2 {
+        trial.keys("& v Right");
+        assert!(trial.screen(80, 24).contains("0 selected"), "{}", trial.screen(80, 24));
+        trial.keys("v");
+        assert!(!trial.bench().selecting.is_on());
+        assert!(trial.message().contains("nothing was there to take it from"));
+    }
+    trial.types(":select - bt(900) < 252.5").keys("Enter");
+    assert!(!trial.bench().selecting.is_on(), "{}", trial.message());
+}
+
+#[test]
+fn another_map_lets_go_of_a_box() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("v Right Down M");
+    assert!(trial.bench().selecting.shape.is_none());
+}
+
+#[test]
 fn a_polygon_is_drawn_corner_by_corner() {
     let (_place, mut trial) = one_granule();
     // A triangle: three places in the first row, two in the second, one in the third.

@@ -134,6 +134,28 @@ fn a_threshold_of_a_test_becomes_the_campaigns() {
 }
 
 #[test]
+fn tests_that_run_anew_leave_a_threshold_alone_that_was_let_go() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("} Right Esc 2 T");
+    assert!(matches!(trial.bench().spread.source, Source::Test(_)), "the test is still in hand");
+    assert!(!trial.bench().selecting.is_on());
+    trial.keys("v Right T");
+    assert_eq!(selection(&trial), [0, 1], "a box being drawn is not joined with it");
+    trial.keys("Esc } T");
+    assert!(trial.bench().selecting.shape.is_some(), "what selected goes on selecting");
+}
+
+#[test]
+fn what_hangs_together_does_not_depend_on_the_map() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("Down Down Right L");
+    let grown = selection(&trial);
+    trial.keys("M");
+    assert!(trial.bench().geographic);
+    assert_eq!(selection(&trial), grown);
+}
+
+#[test]
 fn spectra_like_this_one_are_grown_from_here_or_found_everywhere() {
     let (_place, mut trial) = one_granule();
     // Black bodies of 250 + n kelvins: the distance in BT is the difference of the numbers.

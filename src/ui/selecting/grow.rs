@@ -6,7 +6,8 @@ use crate::flags::FootprintSet;
 use crate::ui::panes::field::Placement;
 
 /// Those of the footprints that are reached from `start` over neighbours on the map, the slanting
-/// ones too; none where `start` is not among them.
+/// ones too; none where `start` is not among them. The map is that of the instrument: on one by
+/// latitude and longitude neighbours may lie places apart.
 pub fn connected(footprints: &FootprintSet, start: usize, map: &Placement) -> FootprintSet {
     let mut left = vec![false; map.footprints()];
     footprints.iter().filter_map(|one| left.get_mut(one).map(|mark| *mark = true)).count();

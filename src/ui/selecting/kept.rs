@@ -50,6 +50,11 @@ impl Join {
         Join::ALL[(here + 1) % Join::ALL.len()]
     }
 
+    /// Whether it takes something away from what is selected, and gives nothing without that.
+    pub fn takes_away(self) -> bool {
+        matches!(self, Join::Minus | Join::Common)
+    }
+
     fn of(self, old: &FootprintSet, new: &FootprintSet) -> FootprintSet {
         match self {
             Join::Add => old.union(new),
@@ -93,7 +98,10 @@ impl Selecting {
 
     /// What would be selected if `new` were joined to it.
     pub fn joined(&self, join: Join, new: Selection) -> Selection {
-        let Some(kept) = &self.kept else { return new };
+        let Some(kept) = &self.kept else {
+            let nothing = Selection::of(FootprintSet::empty(), "selection of 0".to_owned());
+            return if join.takes_away() { nothing } else { new };
+        };
         let footprints = join.of(&kept.footprints, &new.footprints);
         let words = match join {
             Join::Anew => new.words,
@@ -125,6 +133,13 @@ impl Selecting {
         let there = self.kept.is_some();
         self.clear();
         there
+    }
+
+    /// Lets go of what is being drawn on the map.
+    pub fn drop_map_shape(&mut self) {
+        if matches!(self.shape, Some(Shape::Box(_) | Shape::Polygon(_))) {
+            self.shape = None;
+        }
     }
 
     /// Lets go of what is being drawn on the Spread.
@@ -173,7 +188,9 @@ mod tests {
         ] {
             let mut selecting = Selecting::default();
             selecting.take(join, some(1..3));
-            assert_eq!(kept(&selecting), [1, 2], "the first one is joined to nothing");
+            let first = if join.takes_away() { vec![] } else { vec![1, 2] };
+            assert_eq!(kept(&selecting), first, "{join:?} the first one and nothing");
+            selecting.take(Join::Anew, some(1..3));
             selecting.take(join, some(2..5));
             assert_eq!(kept(&selecting), expected, "{join:?}");
         }

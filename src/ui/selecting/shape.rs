@@ -69,7 +69,7 @@ fn on_one_layer(shape: &Shape, bench: &Bench) -> Selection {
         all.filter(|(_, value)| is_in(**value)).map(|(one, _)| one).collect();
     let footprints = match (bench.spread_alike(), shape) {
         (Some(alike), Shape::Threshold) if bench.spread.reach == Reach::Grown => {
-            connected(&footprints, alike.footprint, &bench.placement)
+            connected(&footprints, alike.footprint, &bench.order)
         }
         _ => footprints,
     };
@@ -86,19 +86,20 @@ fn on_one_layer(shape: &Shape, bench: &Bench) -> Selection {
     }
 }
 
-/// The footprints of all granules that are less than `x` from one of them.
+/// The footprints of all granules that lie on the side of `x` that is meant.
 fn in_tray(footprints: FootprintSet, alike: &Alike, x: f64, bench: &Bench) -> Selection {
-    let near = |values: &Vec<f64>| -> FootprintSet {
+    let sense = bench.spread_sense();
+    let meant = |values: &Vec<f64>| -> FootprintSet {
         let all = values.iter().enumerate();
-        all.filter(|(_, value)| **value < x).map(|(one, _)| one).collect()
+        all.filter(|(_, value)| sense.margin(**value, x, 1.0) > 0.0).map(|(one, _)| one).collect()
     };
-    let sets = alike.elsewhere.iter().map(|(entry, values)| (*entry, near(values)));
+    let sets = alike.elsewhere.iter().map(|(entry, values)| (*entry, meant(values)));
     let elsewhere: BTreeMap<usize, FootprintSet> =
         sets.filter(|(_, set)| !set.is_empty()).collect();
     let granules = elsewhere.len() + usize::from(!footprints.is_empty());
     let mut selection = Selection { footprints, words: String::new(), elsewhere };
     let (count, name) = (selection.count(), bench.spread_name());
-    selection.words = format!("{count} in {granules} granules where {name} < {x}");
+    selection.words = format!("{count} in {granules} granules where {name} {} {x}", sense.symbol());
     selection
 }
 

@@ -7,14 +7,15 @@ use crate::review::{NewThreshold, ThresholdChange};
 use crate::screening::{Sense, Threshold, proposed_threshold};
 use crate::ui::app::App;
 use crate::ui::bench::{Bench, overtake};
-use crate::ui::colour::Tone;
 use crate::ui::event::Button;
 use crate::ui::jobs::Job;
 use crate::ui::keys::Action;
 use crate::ui::looking::no_granule;
 use crate::ui::overlay::{LinePrompt, Overlay, Purpose};
+use crate::ui::owed;
 use crate::ui::screening;
 use crate::ui::selecting::Shape;
+use crate::ui::turning;
 
 /// Steps that the range of values is divided into, at the least.
 const STEPS: f64 = 100.0;
@@ -268,25 +269,23 @@ pub fn adopt(app: &mut App, why: Option<String>) -> Vec<Job> {
     let fingerprint = screened.rulebook.fingerprint.clone();
     let to = NewThreshold::Tried { to, fingerprint };
     let change = ThresholdChange { test, way, to, why, now };
-    bench.awaited.adopt = request;
+    app.owed.begin(request, "the rulebook".to_owned());
     vec![Job::Adopt { request, change }]
 }
 
-/// The rulebook has changed: the tests run anew.
+/// The rulebook has changed: the tests run anew, over whatever is on the table by now.
 pub fn adopted(app: &mut App, request: u64, found: Result<String, String>) -> Vec<Job> {
-    let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.adopt == request) else {
+    if app.owed.end(request).is_none() {
         return Vec::new();
-    };
-    bench.awaited.adopt = 0;
+    }
+    let mut jobs = Vec::new();
     match found {
         Ok(words) => {
-            let jobs = screening::start(app);
+            jobs = screening::start(app);
             app.say(words);
-            jobs
         }
-        Err(why) => {
-            app.message = (format!("the rulebook stays as it was: {why}"), Tone::Bad);
-            Vec::new()
-        }
+        Err(why) => owed::failed(app, format!("the rulebook stays as it was: {why}")),
     }
+    turning::leave_if_done(app);
+    jobs
 }

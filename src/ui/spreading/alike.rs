@@ -6,6 +6,7 @@ use super::acting::{nudged, put};
 use super::{Alike, Reach, Source};
 use crate::review::Measure;
 use crate::screening::proposed_threshold;
+use crate::ui::across;
 use crate::ui::app::App;
 use crate::ui::bench::{Bench, overtake};
 use crate::ui::jobs::Job;
@@ -69,13 +70,15 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
             return Vec::new();
         }
     };
+    across::end_looking(app);
+    let Some(bench) = app.bench_mut() else { return Vec::new() };
     bench.forget_spread();
     bench.measured = Some(Arc::clone(&alike.measured));
     bench.spread.against = None;
     bench.spread.above = false;
     bench.spread.reach = Reach::Grown;
     let words = alike.measure().words();
-    let cut = first_cut(&alike, &bench.placement);
+    let cut = first_cut(&alike, &bench.order);
     bench.spread.alike = Some(alike);
     bench.spread.source = Source::Alike;
     bench.spread.x = cut;

@@ -155,6 +155,10 @@ fn draw_flags(app: &App, flags: &FlagPrompt, screen: Rect, buffer: &mut Buffer) 
 }
 
 fn leave_lines(app: &App) -> Vec<String> {
+    if app.pending() == 0 {
+        let words = format!("still {}", app.owed.words());
+        return vec![words, "y: leave and lose it   n: stay".to_owned()];
+    }
     let mut lines = vec![format!("{} decisions could not be written:", app.pending())];
     let why = app.write_failure().unwrap_or("the disk does not answer");
     lines.extend(wrapped(why, 70));

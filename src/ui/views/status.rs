@@ -22,6 +22,9 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
     if let Some(across) = &app.across {
         facts.push((format!("{}, Esc ends it", across.words()), Tone::Faint));
     }
+    if !app.owed.is_empty() {
+        facts.push((app.owed.words(), Tone::Faint));
+    }
     let Some(bench) = app.bench() else { return facts };
     facts.extend(cases_left(bench));
     if bench.selecting.is_on() {
