@@ -183,3 +183,22 @@ fn spectra_like_this_one_are_grown_from_here_or_found_everywhere() {
     trial.types(":like angle").keys("Enter");
     assert!(trial.screen(120, 24).contains("spectral angle from"), "{}", trial.message());
 }
+
+#[test]
+fn what_is_given_up_by_escape_ends() {
+    use crate::ui::jobs::Job;
+    let (_place, mut trial) = one_granule();
+    for line in [":like angle", ":against lat"] {
+        trial.types(line);
+        trial.press("Enter");
+        let cancel = match &trial.jobs[..] {
+            [Job::Alike { cancel, .. } | Job::Against { cancel, .. }] => cancel.clone(),
+            _ => panic!("{line} asks for one job"),
+        };
+        trial.press("Esc");
+        assert_eq!(trial.message(), "given up");
+        assert!(cancel.is_cancelled(), "{line}: not only its answer is dropped");
+        trial.settle();
+        assert!(trial.bench().spread.alike.is_none() && trial.bench().spread.against.is_none());
+    }
+}
