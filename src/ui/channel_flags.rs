@@ -101,7 +101,11 @@ pub fn over_noise(app: &mut App, factor: f64) -> Vec<Job> {
             Some(ChannelName { band: band.name.clone(), index: one.channel, wavenumber })
         }));
     }
-    let words = format!("{} channels over {factor} times their noise", channels.len());
+    let words = match channels.len() {
+        0 => format!("no channel is over {factor} times its noise"),
+        1 => format!("1 channel over {factor} times its noise"),
+        count => format!("{count} channels over {factor} times their noise"),
+    };
     if channels.is_empty() {
         bench.drop_channel_pick();
     } else {

@@ -3,7 +3,7 @@
 use std::sync::Arc;
 
 use crate::flags::{FootprintSet, Scope};
-use crate::screening::Test;
+use crate::screening::{Test, TestResult};
 use crate::system::Cancel;
 
 use super::app::App;
@@ -57,6 +57,13 @@ fn draw_polygon(app: &mut App) -> Vec<Job> {
 /// Begins a range of values, or a rectangle or polygon on the picture of two layers; or keeps it.
 fn brush(app: &mut App, action: Action) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    // Before the place was moved it is that of the footprint under the cursor.
+    let under = |values: &[f64]| values.get(bench.cursor).copied().filter(|one| one.is_finite());
+    let here = under(&bench.spread_values());
+    let above = bench.spread.against.as_ref().and_then(|against| under(&against.values));
+    if bench.spread.x.is_none() && here.is_some() {
+        (bench.spread.x, bench.spread.y) = (here, above);
+    }
     let Some(x) = bench.spread.x else {
         app.say("the arrows set the place to begin at");
         return Vec::new();
@@ -183,18 +190,30 @@ fn select_by_test(app: &mut App, join: Join, name: &str, says: Says) -> Vec<Job>
         app.warn("the tests have not run over this granule yet");
         return Vec::new();
     };
-    let tests = &screened.rulebook.tests;
-    let found = test_named(tests, name);
-    let Some((test, result)) = found.and_then(|at| tests.get(at).zip(screened.tests.get(at)))
-    else {
-        app.warn(format!("no test {name}, or several begin like this; Tab lists them"));
-        return Vec::new();
+    let all = screened.rulebook.tests.iter().zip(&screened.tests);
+    let exact = all.clone().filter(|(test, _)| test.name == name).count() > 0;
+    let meant = |test: &Test| if exact { test.name == name } else { test.name.starts_with(name) };
+    let found: Vec<(&Test, &TestResult)> = all.filter(|(test, _)| meant(test)).collect();
+    let name = match &found[..] {
+        [] => {
+            app.warn(format!("no test {name}; Tab lists them"));
+            return Vec::new();
+        }
+        [(test, _)] => test.name.clone(),
+        several => format!("one of {} tests {name}", several.len()),
     };
-    let verdicts = result.verdicts.iter().enumerate();
-    let footprints = verdicts.filter(|(_, verdict)| says.fits(**verdict)).map(|(one, _)| one);
-    let words = Wanted::Test(test.name.clone(), says).words();
-    let selection = Selection::of(footprints.collect(), words);
-    take(app, join, selection, (!result.lacks.is_empty()).then(|| result.lacks.clone()));
+    // Of several, one has to speak, or none to have a result.
+    let verdicts = |footprint: usize| {
+        let mut verdicts = found.iter().map(move |(_, result)| result.verdicts[footprint]);
+        match says {
+            Says::Missing => verdicts.all(|verdict| says.fits(verdict)),
+            _ => verdicts.any(|verdict| says.fits(verdict)),
+        }
+    };
+    let footprints = (0..screened.footprints()).filter(|one| verdicts(*one));
+    let selection = Selection::of(footprints.collect(), Wanted::Test(name, says).words());
+    let lacks = found.iter().map(|(_, result)| &result.lacks).find(|lacks| !lacks.is_empty());
+    take(app, join, selection, lacks.cloned());
     Vec::new()
 }
 

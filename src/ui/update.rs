@@ -56,6 +56,12 @@ fn take_key(app: &mut App, key: Key) -> Vec<Job> {
         bench.touched = true;
     }
     let action = app.keymap.action_of(key);
+    // Whoever goes on with something else is not to be taken away from it by the first case.
+    if action != Some(Action::NextCase)
+        && let Some(bench) = app.bench_mut()
+    {
+        bench.doubt.wanted = false;
+    }
     // Stopping and drawing anew work whatever lies over the panes.
     let always = matches!(action, Some(Action::Suspend | Action::Redraw));
     if !always && !matches!(app.overlay, Overlay::None) {

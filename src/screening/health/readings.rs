@@ -29,7 +29,6 @@ impl<'g> Spectra<'g> {
 
     /// Missing where they cannot be read, and from then on.
     fn values(&self, band: usize, footprint: usize, out: &mut Vec<f64>) {
-        self.cancel.did(1);
         if self.leaves_out(footprint) {
             return self.nothing(band, out);
         }
@@ -80,6 +79,11 @@ impl<'g> BandReadings<'g> {
                 *value = planck(*wavenumber, *value);
             }
         }
+    }
+
+    /// Tells whoever waits that a spectrum has been looked at.
+    pub fn looked_at(&self) {
+        self.spectra.cancel.did(1);
     }
 
     /// Whether the file keeps brightness temperatures; their noise is that of one scene.

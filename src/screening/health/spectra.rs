@@ -95,6 +95,7 @@ impl SpectraCheck<'_> {
         let (mut sums, mut position) = (LineSums::default(), Vec::new());
         for offset in 0..grid.row_length() {
             self.readings.radiances(first + offset, buffer);
+            self.readings.looked_at();
             self.gather_lines(grid, offset, buffer, &mut position, &mut sums);
             let mut reading = self.plain(buffer, expected);
             if let (Some(many), Some(basis)) = (many, self.basis) {

@@ -1,6 +1,7 @@
 //! Flags of channels, given and withdrawn in the Trace.
 
 use super::one_granule;
+use crate::netcdf_files::{FileReader, ReadLimits, Samples};
 use crate::ui::trial::Trial;
 
 /// Wavenumbers of the flagged channels, whole cm-1.
@@ -31,6 +32,16 @@ fn one_channel_and_an_interval_are_flagged_repeated_and_withdrawn() {
     assert!(screen.contains('N'), "flagged channels carry their letter: {screen}");
     trial.types(":export ").types(&place.path("masks").to_string_lossy()).keys("Enter");
     assert!(trial.message().starts_with("exported to"), "{}", trial.message());
+    // 830, 831, 832, 899, 900, 901 and 1230, 1231 cm-1: just these carry the flag in the mask.
+    let mask = place.path("masks/lowen_001.mask.nc");
+    let program = crate::netcdf_files::ReaderProgram::in_process();
+    let mask = FileReader::open(&program, &mask, &ReadLimits::default()).unwrap();
+    let flags = |band: &str| {
+        let name = format!("channel_flag_{band}");
+        mask.read_all(mask.index().variable(&name).unwrap()).unwrap()
+    };
+    assert_eq!(flags("long"), Samples::I32(vec![0, 0, 0, 1, 0, 1]));
+    assert_eq!(flags("mid"), Samples::I32(vec![1, 0]));
 }
 
 #[test]
@@ -62,7 +73,7 @@ fn channels_over_their_noise_need_a_measured_noise() {
     let (_place, mut trial) = one_granule();
     trial.types(":noisy 3").keys("Enter");
     // Thirty black bodies without noise: nothing stands out.
-    assert_eq!(trial.message(), "0 channels over 3 times their noise");
+    assert_eq!(trial.message(), "no channel is over 3 times its noise");
     trial.types(":noisy much").keys("Enter");
     assert!(trial.screen(80, 24).contains("much is no number"));
 }

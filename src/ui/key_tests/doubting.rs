@@ -195,3 +195,22 @@ fn the_key_may_be_pressed_before_the_tests_have_run() {
     trial.settle();
     assert_eq!(selected(&trial), [10, 11]);
 }
+
+#[test]
+fn the_first_case_does_not_break_into_what_was_begun_meanwhile() {
+    let place = place(&["a.nc"]);
+    let mut trial = place.review_held(&["a.nc"]);
+    while trial.app.bench().is_none() {
+        for answer in trial.answers_of_next() {
+            trial.event(crate::ui::event::Event::Answer(answer));
+        }
+    }
+    trial.press("Space");
+    assert!(trial.message().starts_with("the first case is shown"), "{}", trial.message());
+    trial.press("v");
+    trial.settle();
+    assert!(trial.bench().tests.screened.is_some());
+    assert_eq!(trial.bench().selection().words, "box of 1", "what was begun is still in hand");
+    trial.keys("Esc Space");
+    assert!(trial.bench().selection().words.starts_with("case of"));
+}

@@ -179,3 +179,25 @@ fn the_latest_decision_is_repeated_on_another_selection() {
     trial.keys("a Down F");
     assert_eq!(trial.record().counts().by_person, 2 + 2, "looked at, twice");
 }
+
+#[test]
+fn several_tests_that_begin_alike_select_where_one_of_them_speaks() {
+    let place = super::screening::place(&["a.nc"]);
+    let mut trial = place.review(&["a.nc"]);
+    // Of "cold window", below 260 K, and "no such channel" only the first speaks.
+    trial.types(":select test cold for").keys("Enter");
+    assert_eq!(selected(&trial).len(), 10);
+    // All three have no name in common; the two windows are not asked for by one beginning.
+    trial.types(":select test warm for").keys("Enter");
+    assert_eq!(selected(&trial), [26, 27, 28, 29]);
+    let rulebook = super::screening::RULEBOOK.replace("warm window", "cold or warm");
+    std::fs::write(place.path("campaign/rulebook.toml"), rulebook).unwrap();
+    let mut trial = place.review(&["a.nc"]);
+    trial.types(":select test cold for").keys("Enter");
+    assert_eq!(selected(&trial).len(), 14, "one of the two speaks: {}", trial.message());
+    assert!(trial.bench().selection().words.contains("one of 2 tests cold speaks for"));
+    trial.types(":select test cold missing").keys("Enter");
+    assert!(!trial.bench().selecting.is_on(), "none of them is missing anywhere");
+    trial.types(":select test hot for").keys("Enter");
+    assert_eq!(trial.message(), "no test hot; Tab lists them");
+}

@@ -202,3 +202,13 @@ fn what_is_given_up_by_escape_ends() {
         assert!(trial.bench().spread.alike.is_none() && trial.bench().spread.against.is_none());
     }
 }
+
+#[test]
+fn a_brush_begins_at_the_footprint_under_the_cursor() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":against bt(1231)").keys("Enter 2 Down Down 4 v");
+    let spread = &trial.bench().spread;
+    assert!((spread.x.unwrap() - 262.0).abs() < 1e-6 && (spread.y.unwrap() - 262.0).abs() < 1e-6);
+    trial.keys("PageUp Right Up Right Up v");
+    assert!(selection(&trial).contains(&12), "{:?}", selection(&trial));
+}

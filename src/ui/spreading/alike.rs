@@ -89,9 +89,7 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
     };
     put(bench, nudged(cut, 0.0, range), None);
     app.panes.focus_on(Pane::Spread);
-    app.say(format!(
-        "like this one by {words}: Left Right how alike, {reach} how far, {like} by what"
-    ));
+    app.say(format!("alike by {words}; {reach}: here, Tray; {like}: next measure"));
     Vec::new()
 }
 

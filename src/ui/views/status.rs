@@ -53,6 +53,9 @@ pub fn status_facts(app: &App) -> Vec<(String, Tone)> {
 /// How many cases are left to decide: always in view, once the tests have run.
 fn cases_left(bench: &Bench) -> Option<(String, Tone)> {
     bench.tests.screened.as_ref().zip(bench.record.open())?;
+    if bench.is_blind() {
+        return None;
+    }
     Some(match bench.doubt.cases.len() {
         0 => ("no case left".to_owned(), Tone::Good),
         1 => ("1 case left".to_owned(), Tone::Strong),

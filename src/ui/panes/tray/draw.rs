@@ -257,6 +257,6 @@ mod tests {
         let view = TrayView { rows: &rows, current: 2, cursor: 2, focused: false };
         let mut screen = Screen::new(24, 4);
         draw(&view, &Theme { ascii: true, ..THEME }, screen.area(), &mut screen.buffer);
-        assert_eq!(screen.lines()[1], " * ~owen_cloud 37 alike");
+        assert_eq!(screen.lines()[1], " * ~ndle_lowen_cloud 37");
     }
 }

@@ -21,10 +21,10 @@ pub fn lines(shares: &TrayShares) -> [(&'static str, String); 4] {
     columns(shares).map(|value| (headings.next().unwrap_or_default(), value))
 }
 
-/// What there is room for beside a name: what is said instead, or the share in doubt.
+/// What there is room for beside a name: the number that is said instead, or the share in doubt.
 pub fn mark(row: &TrayRow) -> String {
-    if !row.note.is_empty() {
-        return row.note.clone();
+    if let Some(number) = row.note.split(' ').next().filter(|number| !number.is_empty()) {
+        return number.to_owned();
     }
     let doubt = row.shares.and_then(|shares| shares.in_doubt);
     doubt.map_or(String::new(), |doubt| format!("?{}", percent(doubt)))
@@ -76,7 +76,7 @@ mod tests {
         assert_eq!(detail(&row, 30), "3% in doubt, 25% flagged");
         assert_eq!(mark(&row), "?3%");
         let row = TrayRow { note: "5 alike".to_string(), ..row };
-        assert_eq!((detail(&row, 30), mark(&row)), ("5 alike".to_string(), "5 alike".to_string()));
+        assert_eq!((detail(&row, 30), mark(&row)), ("5 alike".to_string(), "5".to_string()));
     }
 
     #[test]
