@@ -24,6 +24,7 @@ pub struct Granule {
     screened: Screened,
     identity: GranuleIdentity,
     truth: Vec<Sight>,
+    window: Vec<f64>,
 }
 
 impl Granule {
@@ -33,7 +34,11 @@ impl Granule {
         let review = Review::open(&opening, file)?;
         let screened = review.screen(rulebook, &Cancel::new())?;
         let (identity, truth) = (review.identify()?, Sight::of(&review)?);
-        Ok(Granule { name: review.granule().name(), review, screened, identity, truth })
+        let window = match review.first_look().first() {
+            Some((text, _)) => review.layer(text, &Cancel::new())?.values,
+            None => Vec::new(),
+        };
+        Ok(Granule { name: review.granule().name(), review, screened, identity, truth, window })
     }
 
     /// What the ledgers of a campaign come to.
@@ -45,7 +50,7 @@ impl Granule {
     /// The cases that are left.
     pub fn cases(&self, state: &FlagState) -> Vec<Case> {
         let settled = |at: usize| state.review[at] == ReviewState::DecidedByPerson;
-        self.review.cases(&self.screened, settled)
+        self.review.cases(&self.screened, settled, &self.window)
     }
 
     /// The case whose most doubtful footprint has this index.

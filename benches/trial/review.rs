@@ -21,6 +21,8 @@ pub struct Came {
     pub mistakes: usize,
     /// From the first key to the last answer.
     pub wall: Duration,
+    /// Of that, waiting for granules to be read and tested.
+    pub waiting: Duration,
 }
 
 /// More keys than this and something goes round in a circle.
@@ -39,15 +41,17 @@ pub fn done(files: &[PathBuf], campaign: &Path, granules: &[Granule]) -> Result<
         campaign: Campaign::open(campaign)?,
         granules,
         cases: vec![Vec::new(); granules.len()],
+        waiting: Duration::ZERO,
     };
     review.ready();
+    review.waiting = Duration::ZERO;
     let start = Instant::now();
     for _ in 0..MOST_CASES {
         if !review.step()? {
             let wall = start.elapsed();
             review.hands.leave();
-            let Reviewing { hands, reviewer, cases, .. } = review;
-            return Ok(Came { hands, cases, mistakes: reviewer.mistakes, wall });
+            let Reviewing { hands, reviewer, cases, waiting, .. } = review;
+            return Ok(Came { hands, cases, mistakes: reviewer.mistakes, wall, waiting });
         }
     }
     Err("the review does not come to an end".into())
@@ -59,36 +63,35 @@ struct Reviewing<'g> {
     campaign: Campaign,
     granules: &'g [Granule],
     cases: Vec<Vec<usize>>,
+    waiting: Duration,
 }
 
 impl Reviewing<'_> {
-    /// Waits until the tests have run on the granule on the table.
-    fn ready(&self) {
+    /// Waits until the tests have run on the granule on the table and a case is shown, or how many there
+    /// are; or until it is said that there is no more.
+    fn ready(&mut self) {
+        let start = Instant::now();
         self.hands.wait("the cases that are left", |screen| {
-            (screen.contains("cases left")
-                || screen.contains("case left")
-                || screen.contains("in doubt"))
-                && !screen.contains("tests running")
-                && !screen.contains("opening ")
+            let status = screen.lines().rev().nth(1).unwrap_or_default();
+            let told = ["cases left", "case left", "no other granule"];
+            told.iter().any(|words| status.contains(words)) && !status.contains("tests")
         });
+        self.waiting += start.elapsed();
     }
 
     /// Decides the next case, or signs the granule off and goes on to the next; false at the end.
     fn step(&mut self) -> Result<bool, Mishap> {
-        if !self.hands.status().contains("in doubt to") {
-            self.hands.press(" ", "to the next case");
-        }
         let status = self.hands.status();
         if status.contains("in doubt to") {
             self.decide()?;
-            return Ok(true);
+        } else if status.contains("nothing is left in doubt") {
+            self.sign_off();
+            self.hands.press(" ", "to the next granule");
+            self.ready();
+            return Ok(!self.hands.status().contains("no other granule"));
+        } else {
+            self.hands.press(" ", "to the first case");
         }
-        self.sign_off();
-        self.hands.press("N", "to the next granule");
-        if self.hands.status().contains("no other granule") {
-            return Ok(false);
-        }
-        self.ready();
         Ok(true)
     }
 

@@ -29,14 +29,15 @@ fn effort(granules: &[Granule], came: &Came) -> String {
     let mut text = format!(
         "{} granules of {footprints} footprints, {doubtful} of them in doubt: {cases} cases decided, {} \
          of them wrongly ({:.0} % was the aim), with {strokes} keystrokes, {:.1} for each granule and \
-         {:.2} for each case. From the first key to the last answer {:.0} s went by, the waiting for the \
-         screen to rest included.\n\n",
+         {:.2} for each case. From the first key to the last answer {:.0} s went by, {:.0} s of them waiting \
+         for granules to be read and tested and the rest mostly for the screen to rest.\n\n",
         granules.len(),
         came.mistakes,
         100.0 * WRONG,
         strokes as f64 / granules.len() as f64,
         strokes as f64 / cases.max(1) as f64,
         came.wall.as_secs_f64(),
+        came.waiting.as_secs_f64(),
     );
     text += "| keys | keystrokes | screen follows after, median | at worst |\n| --- | --- | --- | --- |\n";
     for (purpose, count) in &came.hands.strokes {

@@ -5,8 +5,9 @@ use crate::flags::FootprintSet;
 use crate::layers::{Names, Neighbours};
 use crate::screening::Screened;
 
-/// Footprints in doubt that lie beside each other and of which the tests suggest the same: some flag,
-/// or none. So one word answers for all of a case.
+/// Footprints in doubt that lie beside each other and look alike: the tests suggest the same of them,
+/// some flag or none, and their window temperatures go over into each other. So one word answers for
+/// all of a case.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Case {
     /// Which.
@@ -17,11 +18,19 @@ pub struct Case {
     pub worst: usize,
 }
 
+/// From one footprint to the next, a larger step in window temperature (K) parts two cases: what is on
+/// its other side may well be another thing. Chosen in the written trial (`docs/trial.md`): without it
+/// one case ran through clear sky and cloud alike, with smaller steps there are many more cases and
+/// hardly a footprint more is judged rightly.
+const STEP: f64 = 3.0;
+
 /// The cases, the most doubtful first; of equals the larger, then the earlier in the file.
-/// `settled` tells the footprints that a person has decided.
+/// `settled` tells the footprints that a person has decided; `window` their temperatures (K), of which
+/// none may be known.
 fn cases(
     screened: &Screened,
     settled: impl Fn(usize) -> bool,
+    window: &[f64],
     neighbours: &Neighbours,
 ) -> Vec<Case> {
     let count = screened.footprints();
@@ -30,7 +39,9 @@ fn cases(
     let mut regions = Regions::new(count);
     for at in (0..count).filter(|at| open[*at]) {
         let beside = neighbours.of(at).iter().map(|one| *one as usize);
-        let alike = |other: &usize| open[*other] && suggested[*other] == suggested[at];
+        let alike = |other: &usize| {
+            open[*other] && suggested[*other] == suggested[at] && no_step(window, at, *other)
+        };
         // Nearness need not be mutual on the ground; one of the two is enough.
         beside.filter(alike).for_each(|other| regions.join(at, other));
     }
@@ -48,10 +59,26 @@ fn cases(
     cases
 }
 
+fn no_step(window: &[f64], one: usize, other: usize) -> bool {
+    match (window.get(one), window.get(other)) {
+        (Some(one), Some(other)) if one.is_nan() || other.is_nan() => {
+            one.is_nan() && other.is_nan()
+        }
+        (Some(one), Some(other)) => (one - other).abs() < STEP,
+        _ => true,
+    }
+}
+
 impl Review {
-    /// What is left to decide, by what lies beside what on the ground.
-    pub fn cases(&self, screened: &Screened, settled: impl Fn(usize) -> bool) -> Vec<Case> {
-        cases(screened, settled, self.names().neighbours())
+    /// What is left to decide, by what lies beside what on the ground. `window` are brightness
+    /// temperatures (K) of a window channel, or nothing.
+    pub fn cases(
+        &self,
+        screened: &Screened,
+        settled: impl Fn(usize) -> bool,
+        window: &[f64],
+    ) -> Vec<Case> {
+        cases(screened, settled, window, self.names().neighbours())
     }
 }
 

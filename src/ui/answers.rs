@@ -331,6 +331,8 @@ fn indices(app: &mut App, request: u64, found: Vec<Result<Layer, String>>) -> Ve
             layer.values
         });
     }
+    // Cases are parted by what a window sees.
+    bench.find_cases();
     Vec::new()
 }
 

@@ -127,6 +127,8 @@ pub struct App {
     pub layout: Option<ScreenLayout>,
     /// Whether mouse reports are on.
     pub mouse: bool,
+    /// What the mouse hovers over, in words, until a key or a button is pressed.
+    pub hovered: Option<String>,
     /// The person wants to leave as soon as everything is written.
     pub leaving: bool,
     /// The program is to end: with this exit code.
@@ -180,6 +182,7 @@ impl App {
             last_deed: None,
             layout: None,
             mouse: false,
+            hovered: None,
             leaving: false,
             ended: None,
             changed: true,

@@ -48,7 +48,10 @@ impl Bench {
         };
         let review = self.record.open().map_or(&[][..], |record| &record.state().review);
         let settled = |at: usize| review.get(at) == Some(&ReviewState::DecidedByPerson);
-        self.doubt.cases = self.review.cases(screened, settled);
+        // The first index of a first look is a window's temperature, where the granule has one.
+        let window = self.indices.first().filter(|index| index.unit == "K");
+        let window = window.and_then(|index| index.values.as_deref().ok()).unwrap_or_default();
+        self.doubt.cases = self.review.cases(screened, settled, window);
     }
 }
 

@@ -52,6 +52,9 @@ fn draw_lines(app: &App, layout: &ScreenLayout, buffer: &mut Buffer) {
     let under = views::under_cursor(app);
     let (message, tone) = match &preview {
         Some(words) => (words.as_str(), super::colour::Tone::Strong),
+        None if app.hovered.is_some() => {
+            (app.hovered.as_deref().unwrap_or_default(), super::colour::Tone::Faint)
+        }
         None if app.message.0.is_empty() => (under.as_str(), super::colour::Tone::Plain),
         None => (app.message.0.as_str(), app.message.1),
     };

@@ -62,6 +62,8 @@ pub enum Button {
     Drag,
     /// The left button came up.
     Release,
+    /// Moved with no button down.
+    Move,
     /// The wheel turned away from the hand.
     WheelUp,
     /// The wheel turned towards the hand.

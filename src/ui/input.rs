@@ -236,6 +236,7 @@ fn click(text: &str, letter: u8) -> Option<Mouse> {
         (0, false, b'M') => Button::Press,
         (0, true, b'M') => Button::Drag,
         (0, _, b'm') => Button::Release,
+        (3, true, b'M') => Button::Move,
         (64, _, b'M') => Button::WheelUp,
         (65, _, b'M') => Button::WheelDown,
         _ => return None,
@@ -329,10 +330,11 @@ mod tests {
     fn mouse_reports_count_from_nought() {
         let mut parser = InputParser::default();
         assert_eq!(
-            parser.feed(b"\x1b[<0;12;5M\x1b[<64;1;1M"),
+            parser.feed(b"\x1b[<0;12;5M\x1b[<64;1;1M\x1b[<35;2;3M"),
             [
                 Input::Mouse(Mouse { button: Button::Press, column: 11, row: 4 }),
                 Input::Mouse(Mouse { button: Button::WheelUp, column: 0, row: 0 }),
+                Input::Mouse(Mouse { button: Button::Move, column: 1, row: 2 }),
             ]
         );
     }

@@ -7,10 +7,10 @@ use std::time::Duration;
 
 use super::app::App;
 use super::draw::{draw, draw_over};
-use super::event::{Ending, Event};
+use super::event::{Button, Ending, Event, Input};
 use super::jobs::Answer;
 use super::runner::Runner;
-use super::terminal::Screen;
+use super::terminal::{MouseReports, Screen};
 use super::update::update;
 use super::{keyboard, signals, terminal, turning, work};
 
@@ -43,7 +43,7 @@ pub struct Ended {
 pub fn run(mut app: App) -> io::Result<Ended> {
     let (sender, events) = channel();
     signals::listen(sender.clone())?;
-    let mut screen = Screen::take(app.mouse, !app.low_bandwidth)?;
+    let mut screen = Screen::take(reports(&app), !app.low_bandwidth)?;
     keyboard::listen(sender.clone())?;
     let mut runner = Runner::new(Arc::clone(&app.outside), sender);
     for job in turning::start(&mut app) {
@@ -85,21 +85,34 @@ fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
 }
 
 fn handle(app: &mut App, screen: &mut Screen, runner: &mut Runner, event: Event) {
-    // Whether the ledgers have news shows itself in `update`.
-    let asking = matches!(
-        event,
-        Event::LedgerMoved
-            | Event::Quiet
-            | Event::Answer(Answer::Reread { .. } | Answer::Changes(..))
-    );
-    app.changed |= !asking;
+    app.changed |= !tells_by_itself(&event);
     let mouse = app.mouse;
     for job in update(app, event) {
         runner.start(job);
     }
     if mouse != app.mouse {
         // A terminal that is gone shows itself at the next drawing.
-        let _ = screen.set_mouse(app.mouse);
+        let _ = screen.set_mouse(reports(app));
+    }
+}
+
+/// Whether `update` says itself that something changed: the ledgers may have no news, and what the mouse
+/// passes over may have the same words.
+fn tells_by_itself(event: &Event) -> bool {
+    match event {
+        Event::LedgerMoved
+        | Event::Quiet
+        | Event::Answer(Answer::Reread { .. } | Answer::Changes(..)) => true,
+        Event::Input(Input::Mouse(mouse)) => mouse.button == Button::Move,
+        _ => false,
+    }
+}
+
+fn reports(app: &App) -> MouseReports {
+    match (app.mouse, app.low_bandwidth) {
+        (false, _) => MouseReports::Off,
+        (true, true) => MouseReports::Buttons,
+        (true, false) => MouseReports::Moves,
     }
 }
 
@@ -114,7 +127,7 @@ fn show(app: &mut App, screen: &mut Screen) -> io::Result<()> {
     if app.renew {
         app.renew = false;
         // All settings of the terminal may have been changed meanwhile.
-        screen.take_again(app.mouse)?;
+        screen.take_again(reports(app))?;
         app.changed = true;
     }
     if std::mem::take(&mut app.redraw) {

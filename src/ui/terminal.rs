@@ -17,19 +17,42 @@ use ratatui::{Frame, Terminal, TerminalOptions, Viewport};
 
 type Writer = BufWriter<Stdout>;
 
-/// Buttons, dragging and the wheel with plain decimal positions. Not every movement: over a slow
-/// link that would be traffic without end.
+/// Buttons, dragging and the wheel with plain decimal positions.
 const MOUSE_ON: &str = "\x1b[?1000h\x1b[?1002h\x1b[?1006h";
-const MOUSE_OFF: &str = "\x1b[?1006l\x1b[?1002l\x1b[?1000l";
+/// Every movement too; not over a slow link, where that would be traffic without end.
+const MOUSE_MOVES_ON: &str = "\x1b[?1003h";
+const MOUSE_OFF: &str = "\x1b[?1006l\x1b[?1003l\x1b[?1002l\x1b[?1000l";
 const PASTE_ON: &str = "\x1b[?2004h";
 /// Ends a synchronised update, mouse and paste reports and colours, wraps lines again, leaves the
 /// alternate screen and shows the cursor.
-const GIVE_BACK: &[u8] = b"\x1b[?2026l\x1b[?1006l\x1b[?1002l\x1b[?1000l\x1b[?2004l\x1b[0m\
+const GIVE_BACK: &[u8] =
+    b"\x1b[?2026l\x1b[?1006l\x1b[?1003l\x1b[?1002l\x1b[?1000l\x1b[?2004l\x1b[0m\
 \x1b[?7h\x1b[?1049l\x1b[?25h";
 
 /// True while the terminal is in our hands.
 static TAKEN: AtomicBool = AtomicBool::new(false);
 static PANIC_HOOK: Once = Once::new();
+
+/// What the terminal tells of the mouse.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum MouseReports {
+    /// Nothing: the mouse is the terminal's.
+    Off,
+    /// Buttons, dragging and the wheel.
+    Buttons,
+    /// Every movement too.
+    Moves,
+}
+
+impl MouseReports {
+    fn sequence(self) -> String {
+        match self {
+            MouseReports::Off => MOUSE_OFF.to_owned(),
+            MouseReports::Buttons => MOUSE_ON.to_owned(),
+            MouseReports::Moves => format!("{MOUSE_ON}{MOUSE_MOVES_ON}"),
+        }
+    }
+}
 
 /// The terminal in our hands; given back when this is dropped.
 pub struct Screen {
@@ -52,7 +75,7 @@ impl Screen {
     ///
     /// # Errors
     /// Whatever the terminal refuses; it is then given back already.
-    pub fn take(mouse: bool, synchronised: bool) -> io::Result<Screen> {
+    pub fn take(mouse: MouseReports, synchronised: bool) -> io::Result<Screen> {
         install_panic_hook();
         TAKEN.store(true, Ordering::SeqCst);
         match start(mouse) {
@@ -68,7 +91,7 @@ impl Screen {
     ///
     /// # Errors
     /// The terminal has gone away.
-    pub fn take_again(&mut self, mouse: bool) -> io::Result<()> {
+    pub fn take_again(&mut self, mouse: MouseReports) -> io::Result<()> {
         give_back();
         TAKEN.store(true, Ordering::SeqCst);
         self.terminal = start(mouse)?;
@@ -128,8 +151,8 @@ impl Screen {
     ///
     /// # Errors
     /// The terminal has gone away.
-    pub fn set_mouse(&mut self, on: bool) -> io::Result<()> {
-        execute!(self.terminal.backend_mut(), Print(if on { MOUSE_ON } else { MOUSE_OFF }))
+    pub fn set_mouse(&mut self, mouse: MouseReports) -> io::Result<()> {
+        execute!(self.terminal.backend_mut(), Print(mouse.sequence()))
     }
 }
 
@@ -139,13 +162,13 @@ impl Drop for Screen {
     }
 }
 
-fn start(mouse: bool) -> io::Result<Terminal<CrosstermBackend<Writer>>> {
+fn start(mouse: MouseReports) -> io::Result<Terminal<CrosstermBackend<Writer>>> {
     terminal::enable_raw_mode()?;
     let mut writer = BufWriter::with_capacity(64 * 1024, io::stdout());
     queue!(writer, terminal::EnterAlternateScreen, DisableLineWrap, Clear(ClearType::All))?;
     queue!(writer, Print(PASTE_ON), cursor::Hide)?;
-    if mouse {
-        queue!(writer, Print(MOUSE_ON))?;
+    if mouse != MouseReports::Off {
+        queue!(writer, Print(mouse.sequence()))?;
     }
     writer.flush()?;
     let backend = CrosstermBackend::new(writer);

@@ -2,7 +2,7 @@
 
 use super::app::{App, Table};
 use super::bench::Bench;
-use super::event::{Event, Input, Mouse};
+use super::event::{Button, Event, Input, Mouse};
 use super::jobs::Job;
 use super::key::{Code, Key};
 use super::keys::Action;
@@ -11,7 +11,7 @@ use super::panes::Pane;
 use super::{
     across, answers, by_rule, channel_flags, deciding, doubting, exporting, ledger, looking,
     moving, picking, precedents, prompts, screening, spot, spreading, strip, tracing, turning,
-    typing,
+    typing, views,
 };
 
 /// Changes the state by an event and names the jobs to be started.
@@ -46,6 +46,7 @@ pub fn update(app: &mut App, event: Event) -> Vec<Job> {
 }
 
 fn press(app: &mut App, key: Key) -> Vec<Job> {
+    app.hovered = None;
     let mut jobs = take_key(app, key);
     jobs.extend(doubting::go_on(app));
     jobs
@@ -222,7 +223,19 @@ fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
     if !app.mouse || blind || !matches!(app.overlay, Overlay::None) {
         return Vec::new();
     }
+    if mouse.button == Button::Move {
+        hover(app, mouse);
+        return Vec::new();
+    }
+    app.hovered = None;
     moving::click(app, mouse)
+}
+
+/// Says what the mouse is over, in place of what the cursor is on.
+fn hover(app: &mut App, mouse: Mouse) {
+    let words = views::under_mouse(app, mouse.column, mouse.row);
+    app.changed |= words != app.hovered;
+    app.hovered = words;
 }
 
 /// True for the keys that answer a yes-or-no question.

@@ -1,8 +1,11 @@
 //! Layers, channels, spectra, pins.
 
+use ratatui::layout::Size;
+
 use super::one_granule;
-use crate::ui::event::Event;
+use crate::ui::event::{Button, Event, Input, Mouse};
 use crate::ui::jobs::Job;
+use crate::ui::panes::Pane;
 use crate::ui::trial::{POSITIONS, Place};
 
 #[test]
@@ -239,4 +242,39 @@ fn the_strip_lies_along_dimensions_and_then_along_granules() {
     assert!(trial.screen(120, 40).contains("along granules"), "it stays from granule to granule");
     trial.keys("s");
     assert_eq!(trial.message(), "Strip along line");
+}
+
+#[test]
+fn what_the_mouse_is_over_is_told_in_words_until_a_key_is_pressed() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("m 4");
+    trial.app.lay_out(Size::new(200, 60));
+    let mut hover = |pane| {
+        let area = trial.app.area_of(pane).unwrap();
+        let (column, row) = (area.x + area.width / 2, area.y + area.height / 2);
+        trial.event(Event::Input(Input::Mouse(Mouse { button: Button::Move, column, row })));
+        trial.app.hovered.clone().unwrap_or_default()
+    };
+    let field = hover(Pane::Field);
+    assert!(field.starts_with("(2, ") && field.contains(" K · "), "{field}");
+    assert!(hover(Pane::Trace).contains("µm"), "{}", hover(Pane::Trace));
+    let spread = hover(Pane::Spread);
+    assert!(spread.contains(" below, ") && spread.ends_with(" above"), "{spread}");
+    assert_eq!(hover(Pane::Evidence), "");
+    assert_eq!(hover(Pane::Field), field);
+    let value = field.split(" · ").nth(1).unwrap().to_owned();
+    let mut status = || trial.screen(200, 60).lines().rev().nth(1).unwrap().to_owned();
+    assert!(status().contains(&value), "{}", status());
+    trial.keys("Right");
+    assert!(trial.app.hovered.is_none());
+    // Passing over the same words again changes nothing, so nothing is drawn.
+    trial.keys("5");
+    trial.app.lay_out(Size::new(200, 60));
+    let area = trial.app.area_of(Pane::Strip).unwrap();
+    let over = Mouse { button: Button::Move, column: area.x + 20, row: area.y + 4 };
+    trial.event(Event::Input(Input::Mouse(over)));
+    assert!(trial.app.hovered.as_deref().unwrap_or_default().contains("median"));
+    trial.app.changed = false;
+    trial.event(Event::Input(Input::Mouse(Mouse { row: area.y + 5, ..over })));
+    assert!(!trial.app.changed);
 }

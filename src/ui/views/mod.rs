@@ -17,6 +17,7 @@ mod trace;
 mod trace_values;
 mod tray;
 mod under_cursor;
+mod under_mouse;
 
 pub use evidence::evidence_rows;
 pub use field::footprint_under;
@@ -28,6 +29,7 @@ pub use strip::{strip_entry_under, strip_footprint_under};
 pub use trace::wavenumber_under;
 pub use tray::tray_row_under;
 pub use under_cursor::under_cursor;
+pub use under_mouse::under_mouse;
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;

@@ -26,6 +26,20 @@ pub fn spread_place_under(app: &App, column: u16, row: u16) -> Option<(f64, f64)
     })
 }
 
+/// What lies under a cell of the screen: how many values on either side, or the values of both layers.
+pub fn words_under(app: &App, column: u16, row: u16) -> Option<String> {
+    let bench = app.bench()?;
+    let (x, y) = spread_place_under(app, column, row)?;
+    let (name, at) = (bench.spread_name(), super::with_unit(x, bench.spread_unit()));
+    if let Some(against) = &bench.spread.against {
+        return Some(format!("{name} {at} · {} {}", against.text, super::number(y)));
+    }
+    let values = bench.spread_values();
+    let count = |holds: &dyn Fn(f64) -> bool| values.iter().filter(|value| holds(**value)).count();
+    let (below, above) = (count(&|value| value < x), count(&|value| value >= x));
+    Some(format!("{name} {at} · {below} below, {above} above"))
+}
+
 fn with_view<R>(app: &App, use_view: impl FnOnce(&SpreadView<'_>) -> R) -> R {
     let focused = app.focus() == Pane::Spread;
     let Some(bench) = app.bench() else {

@@ -27,6 +27,18 @@ pub fn strip_footprint_under(app: &App, column: u16, row: u16) -> Option<usize> 
     footprints.number(&position)
 }
 
+/// The group under a cell of the screen, in words.
+pub fn words_under(app: &App, column: u16, row: u16) -> Option<String> {
+    let area = app.area_of(Pane::Strip)?;
+    let bench = app.bench()?;
+    let group = with_view(app, |view| strip::group_at(view, area, column, row))?;
+    let series = match app.strip.along {
+        Along::Dimension(dimension) => Series::within(bench, dimension, Some(group)),
+        Along::Granules => Series::of_granules(app, Some(group)),
+    };
+    Some(series.words(&bench.layer.unit))
+}
+
 fn with_view<R>(app: &App, use_view: impl FnOnce(&StripView<'_>) -> R) -> R {
     let focused = app.focus() == Pane::Strip;
     let Some(bench) = app.bench() else {
@@ -42,8 +54,12 @@ fn with_view<R>(app: &App, use_view: impl FnOnce(&StripView<'_>) -> R) -> R {
         });
     };
     let series = match app.strip.along {
-        Along::Dimension(dimension) => Series::within(bench, dimension),
-        Along::Granules => Series::of_granules(app),
+        Along::Dimension(dimension) => {
+            let footprints = bench.review.granule().footprints();
+            let cursor = footprints.position(bench.cursor).get(dimension).copied();
+            Series::within(bench, dimension, cursor)
+        }
+        Along::Granules => Series::of_granules(app, app.current_entry()),
     };
     let words = series.words(&bench.layer.unit);
     let title = format!("{} along {}", bench.layer.text, series.along);
@@ -79,21 +95,19 @@ struct Series {
 }
 
 impl Series {
-    /// The layer on show along a dimension of the footprints.
-    fn within(bench: &Bench, dimension: usize) -> Series {
+    /// The layer on show along a dimension of the footprints, with one group marked.
+    fn within(bench: &Bench, dimension: usize, cursor: Option<usize>) -> Series {
         let footprints = bench.review.granule().footprints();
         let along = footprints.names().get(dimension).cloned().unwrap_or_default();
-        let cursor = footprints.position(bench.cursor).get(dimension).copied();
         let name = cursor.map_or_else(String::new, |number| format!("{along} {number}"));
         let groups = gathered(&bench.layer.values, footprints.lengths(), dimension);
         Series { along, groups, cursor, name, why: "no values".to_owned(), is_summing: false }
     }
 
-    /// The layer in the granules of the Tray.
-    fn of_granules(app: &App) -> Series {
+    /// The layer in the granules of the Tray, with one of them marked.
+    fn of_granules(app: &App, cursor: Option<usize>) -> Series {
         let found = &app.strip.granules;
         let groups = found.iter().map(|one| one.clone()?.ok()).collect();
-        let cursor = app.current_entry();
         let here = cursor.and_then(|entry| found.get(entry)).cloned().flatten();
         let why = match here {
             Some(Err(why)) => why,

@@ -155,6 +155,17 @@ pub fn wavenumber_under(app: &App, column: u16, row: u16) -> Option<f64> {
     parts.with_view(app, |view| trace::wavenumber_at(view, area, column, row))
 }
 
+/// The channel nearest to a wavenumber and its value on show, in words.
+pub fn words_at(app: &App, wavenumber: f64) -> Option<String> {
+    let bench = app.bench()?;
+    let number = bench.channels.nearest(wavenumber);
+    let at = bench.channels.wavenumber(number)?;
+    let value = trace_values::of_channel(bench, number);
+    let value = value.map(|value| super::with_unit(value, &trace_values::unit(bench)));
+    let value = value.unwrap_or_else(|| "missing".to_owned());
+    Some(format!("{at:.2} cm-1 · {:.3} µm · {value}", 1e4 / at))
+}
+
 /// A hundredth of the black body's radiation shows no absorption worth a look.
 fn least(bench: &Bench) -> f64 {
     if bench.look.quantity == TraceQuantity::Absorption { 0.01 } else { 0.0 }

@@ -37,7 +37,12 @@ pub fn of(bench: &Bench, bands: &[BandSpectrum]) -> Values {
 
 /// The value on show of the channel in hand at the cursor.
 pub fn in_hand(bench: &Bench) -> Option<f64> {
-    let channel = bench.channels.channel(bench.channel)?;
+    of_channel(bench, bench.channel)
+}
+
+/// The value on show of any channel at the cursor.
+pub fn of_channel(bench: &Bench, number: usize) -> Option<f64> {
+    let channel = bench.channels.channel(number)?;
     let spectrum = bench.spectrum.as_ref()?;
     let values = of(bench, &spectrum.bands);
     values.get(channel.band)?.get(channel.place).copied().filter(|value| !value.is_nan())

@@ -6,23 +6,29 @@ use crate::ui::bench::Bench;
 
 /// `(3, 2) · 12.34°N 5.67°E · cloudy, doubtful · doubt 0.42`
 pub fn under_cursor(app: &App) -> String {
-    let Some(bench) = app.bench() else { return String::new() };
+    app.bench().map_or_else(String::new, |bench| footprint_words(app, bench, bench.cursor, None))
+}
+
+/// The same of any footprint, with the layer's value where it is given.
+pub fn footprint_words(app: &App, bench: &Bench, at: usize, value: Option<String>) -> String {
+    let open = !bench.is_blind();
     let parts = [
-        Some(bench.position_words(bench.cursor)),
-        place(bench),
-        surface(bench),
-        (!bench.is_blind()).then(|| flags(app, bench)).flatten(),
-        (!bench.is_blind()).then(|| doubt(bench)).flatten(),
+        Some(bench.position_words(at)),
+        value,
+        place(bench, at),
+        surface(bench, at),
+        open.then(|| flags(app, bench, at)).flatten(),
+        open.then(|| doubt(bench, at)).flatten(),
     ];
     let parts: Vec<String> = parts.into_iter().flatten().collect();
     parts.join(" · ")
 }
 
 /// Latitude and longitude to a hundredth of a degree, about a kilometre.
-fn place(bench: &Bench) -> Option<String> {
+fn place(bench: &Bench, at: usize) -> Option<String> {
     let field = |name: &str| {
         let values = bench.review.granule().geolocation().field(name)?;
-        values.get(bench.cursor).copied().filter(|value| value.is_finite())
+        values.get(at).copied().filter(|value| value.is_finite())
     };
     let (latitude, longitude) = (field("lat")?, field("lon")?);
     let east = (longitude + 180.0).rem_euclid(360.0) - 180.0;
@@ -31,9 +37,9 @@ fn place(bench: &Bench) -> Option<String> {
     Some(format!("{:.2}°{north} {:.2}°{east_of}", latitude.abs(), east.abs()))
 }
 
-fn surface(bench: &Bench) -> Option<String> {
+fn surface(bench: &Bench, at: usize) -> Option<String> {
     let values = bench.review.granule().geolocation().field("land")?;
-    let land = values.get(bench.cursor).copied().filter(|value| value.is_finite())?;
+    let land = values.get(at).copied().filter(|value| value.is_finite())?;
     Some(match land {
         sea if sea < 0.01 => "sea".to_owned(),
         all if all > 0.99 => "land".to_owned(),
@@ -41,8 +47,8 @@ fn surface(bench: &Bench) -> Option<String> {
     })
 }
 
-fn flags(app: &App, bench: &Bench) -> Option<String> {
-    let flags = bench.record.open()?.state().any_flags(bench.cursor);
+fn flags(app: &App, bench: &Bench, at: usize) -> Option<String> {
+    let flags = bench.record.open()?.state().any_flags(at);
     let vocabulary = &app.outside.campaign.settings().vocabulary;
     let kinds = vocabulary.of_scope(Scope::Footprint);
     let set = kinds.iter().filter(|kind| kind.mask() & flags != 0);
@@ -50,8 +56,8 @@ fn flags(app: &App, bench: &Bench) -> Option<String> {
     (!names.is_empty()).then(|| names.join(", "))
 }
 
-fn doubt(bench: &Bench) -> Option<String> {
+fn doubt(bench: &Bench, at: usize) -> Option<String> {
     let screened = bench.tests.screened.as_ref()?;
-    let doubt = screened.doubt.get(bench.cursor).copied().filter(|doubt| doubt.is_finite())?;
+    let doubt = screened.doubt.get(at).copied().filter(|doubt| doubt.is_finite())?;
     Some(format!("doubt {doubt:.2}"))
 }
