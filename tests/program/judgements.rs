@@ -7,24 +7,12 @@ use radsieve::spectral::planck;
 use serde_json::Value;
 
 use crate::plain_granule::{PlainGranule, temperature};
+use crate::plain_rules::plain_rules;
 
 /// Colder than 220 K is cloudy.
-const RULES: &str = r#"
-format = "radsieve rulebook 1"
-name = "plain"
-title = "for this test"
-[[families]]
-name = "cold"
-[[tests]]
-name = "cold window"
-family = "cold"
-flag = "cloudy"
-expression = "bt(900)"
-sense = "below"
-threshold = 220
-softness = 20
-source = "this test"
-"#;
+fn rules() -> String {
+    plain_rules(220.0, 20.0)
+}
 
 /// A column of each layer; missing is not a number.
 fn columns(granule: &PlainGranule, rules: Option<&str>, layers: &[&str]) -> Vec<Vec<f64>> {
@@ -54,7 +42,7 @@ const JUDGED: [&str; 4] =
 
 #[test]
 fn what_tests_say_is_a_layer_like_others() {
-    let found = columns(&PlainGranule::new(), Some(RULES), &JUDGED);
+    let found = columns(&PlainGranule::new(), Some(&rules()), &JUDGED);
     for footprint in 0..180 {
         // From 200 K on, 0.25 K from one to the next; log-odds are three times the margin, and the
         // doubt of one test that speaks is 1 - |2 p - 1|. Radiances are stored in single precision,
@@ -102,8 +90,8 @@ fn a_granule_that_is_cut_first_comes_out_the_same() {
     // The last two of four scan lines, 90 footprints further on.
     cut.lengths[0] = 2;
     cut.radiance = |wavenumber, footprint| planck(wavenumber, temperature(footprint + 90));
-    let whole = columns(&PlainGranule::new(), Some(RULES), &JUDGED);
-    for (whole, cut) in whole.iter().zip(columns(&cut, Some(RULES), &JUDGED)) {
+    let whole = columns(&PlainGranule::new(), Some(&rules()), &JUDGED);
+    for (whole, cut) in whole.iter().zip(columns(&cut, Some(&rules()), &JUDGED)) {
         assert_eq!(whole[90..], cut[..]);
     }
 }

@@ -13,6 +13,7 @@ mod lending;
 mod manual;
 mod memory;
 mod plain_granule;
+mod plain_rules;
 mod planck;
 mod producer;
 mod samples;

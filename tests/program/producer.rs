@@ -6,6 +6,7 @@ use assert_cmd::Command;
 use radsieve::netcdf_files::{FileReader, ReadLimits, ReaderProgram, Samples};
 
 use crate::plain_granule::PlainGranule;
+use crate::plain_rules::plain_rules;
 
 fn output(folder: &Path, arguments: &[&str]) -> (String, String) {
     let mut command = Command::cargo_bin("radsieve").unwrap();
@@ -19,28 +20,15 @@ fn output(folder: &Path, arguments: &[&str]) -> (String, String) {
 }
 
 /// All footprints are colder than 300 K.
-const RULES: &str = r#"
-format = "radsieve rulebook 1"
-name = "plain"
-title = "for this test"
-[[families]]
-name = "cold"
-[[tests]]
-name = "cold window"
-family = "cold"
-flag = "cloudy"
-expression = "bt(900)"
-sense = "below"
-threshold = 300
-softness = 2
-source = "this test"
-"#;
+fn rules() -> String {
+    plain_rules(300.0, 2.0)
+}
 
 /// A granule whose quality is 0, 1 and missing in turns, and a campaign with these settings.
 fn campaign(settings: &str) -> tempfile::TempDir {
     let folder = tempfile::tempdir().unwrap();
     PlainGranule::new().write(&folder.path().join("plain.nc"));
-    std::fs::write(folder.path().join("rules.toml"), RULES).unwrap();
+    std::fs::write(folder.path().join("rules.toml"), rules()).unwrap();
     std::fs::create_dir(folder.path().join("campaign")).unwrap();
     change(folder.path(), settings);
     folder

@@ -8,6 +8,7 @@ use radsieve::netcdf_files::{FileReader, ReadLimits, ReaderProgram, Samples};
 use serde_json::Value;
 
 use crate::plain_granule::{PlainGranule, temperature};
+use crate::plain_rules::plain_rules;
 
 fn radsieve(folder: &Path, arguments: &[&str]) -> Command {
     let mut command = Command::cargo_bin("radsieve").unwrap();
@@ -29,26 +30,13 @@ fn json(folder: &Path, arguments: &[&str]) -> Value {
 }
 
 /// Colder than 220 K is cloudy.
-const RULES: &str = r#"
-format = "radsieve rulebook 1"
-name = "plain"
-title = "for this test"
-[[families]]
-name = "cold"
-[[tests]]
-name = "cold window"
-family = "cold"
-flag = "cloudy"
-expression = "bt(900)"
-sense = "below"
-threshold = 220.1
-softness = 2
-source = "this test"
-"#;
+fn rules() -> String {
+    plain_rules(220.1, 2.0)
+}
 
 fn plain(folder: &Path) {
     PlainGranule::new().write(&folder.join("plain.nc"));
-    std::fs::write(folder.join("rules.toml"), RULES).unwrap();
+    std::fs::write(folder.join("rules.toml"), rules()).unwrap();
 }
 
 const SCREEN: [&str; 6] = ["screen", "plain.nc", "--rules", "rules.toml", "--campaign", "campaign"];
@@ -110,7 +98,7 @@ fn a_repeated_run_changes_nothing_and_another_threshold_replaces() {
     assert_eq!(before.len(), 1);
     output(folder, &SCREEN, 0);
     assert_eq!(ledgers(folder), before);
-    std::fs::write(folder.join("rules.toml"), RULES.replace("220.1", "210.1")).unwrap();
+    std::fs::write(folder.join("rules.toml"), rules().replace("220.1", "210.1")).unwrap();
     let answer = json(folder, &[&SCREEN[..], &["--json"]].concat());
     let decisions = &answer["files"][0]["decisions"];
     assert_eq!(decisions["unchanged"], false);
@@ -120,7 +108,7 @@ fn a_repeated_run_changes_nothing_and_another_threshold_replaces() {
     // 200, 200.25 … 210 K.
     assert_eq!(cloudy, 41);
     // And back again: the ledger only ever grows.
-    std::fs::write(folder.join("rules.toml"), RULES).unwrap();
+    std::fs::write(folder.join("rules.toml"), rules()).unwrap();
     output(folder, &SCREEN, 0);
     let after = ledgers(folder);
     assert!(before.iter().all(|(path, bytes)| after[path].starts_with(bytes)));
@@ -159,10 +147,10 @@ fn files_that_fail_are_named_and_the_others_are_done() {
     assert!(stdout.starts_with("plain.nc: ") && stderr.contains("broken.nc"), "{stdout}{stderr}");
     output(folder, &["screen", "broken.nc", "--rules", "rules.toml"], 4);
     output(folder, &["screen", "plain.nc", "--rules", "nowhere.toml"], 4);
-    std::fs::write(folder.join("rules.toml"), RULES.replace("below", "under")).unwrap();
+    std::fs::write(folder.join("rules.toml"), rules().replace("below", "under")).unwrap();
     let (_, stderr) = output(folder, &SCREEN, 2);
     assert!(stderr.contains("rules.toml:"), "{stderr}");
-    std::fs::write(folder.join("rules.toml"), RULES.replace("cloudy", "foggy")).unwrap();
+    std::fs::write(folder.join("rules.toml"), rules().replace("cloudy", "foggy")).unwrap();
     let (_, stderr) = output(folder, &SCREEN, 2);
     assert!(stderr.contains("foggy") && stderr.contains("thin_cloud"), "{stderr}");
 }
@@ -174,7 +162,7 @@ fn a_file_without_the_rulebooks_channels_stays_not_assessed() {
     plain(folder);
     // The plain granule warms from detector to detector, which looks like striping, without noise.
     let rules =
-        RULES.replace("bt(900)", "bt(2616)") + "\n[health]\nstriping = 100\nunusual = 1000\n";
+        rules().replace("bt(900)", "bt(2616)") + "\n[health]\nstriping = 100\nunusual = 1000\n";
     std::fs::write(folder.join("rules.toml"), rules).unwrap();
     let answer = json(folder, &[&SCREEN[..], &["--json"]].concat());
     let file = &answer["files"][0];
@@ -192,7 +180,7 @@ fn rulebooks_are_checked_and_shown() {
     plain(folder);
     let (stdout, _) = output(folder, &["rules", "check", "rules.toml"], 0);
     assert!(stdout.contains("1 tests of cloudy; no mistakes"), "{stdout}");
-    let spoiled = RULES.replace("below", "under").replace("softness", "softnes");
+    let spoiled = rules().replace("below", "under").replace("softness", "softnes");
     std::fs::write(folder.join("rules.toml"), spoiled).unwrap();
     let (stdout, _) = output(folder, &["rules", "check", "rules.toml"], 2);
     assert!(stdout.contains("expected above or below") && stdout.contains("softnes"), "{stdout}");
@@ -255,7 +243,7 @@ fn a_persons_word_on_a_suggestion_survives_a_rescreen() {
     person_says(folder.path(), &format!("{overruled}\n{accepted}"));
     // The tests change their mind both ways, and nothing of it reaches these two.
     for threshold in ["100", "400", "220.1"] {
-        let rules = RULES.replace("220.1", threshold);
+        let rules = rules().replace("220.1", threshold);
         std::fs::write(folder.path().join("rules.toml"), rules).unwrap();
         output(folder.path(), &SCREEN, 0);
         let Samples::I32(flags) = mask(folder.path(), "footprint_flag") else { panic!() };

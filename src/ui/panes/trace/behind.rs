@@ -150,27 +150,6 @@ mod tests {
 
     const ASCII: Theme = Theme { ascii: true, ..THEME };
 
-    fn view<'a>() -> TraceView<'a> {
-        TraceView {
-            title: "t",
-            quantity: "BT",
-            unit: "K",
-            curves: &[],
-            guides: &[],
-            areas: &[],
-            median: &[],
-            bars: &[],
-            marks: &[],
-            x: (600.0, 1000.0),
-            y: Some((200.0, 300.0)),
-            least: 0.0,
-            channel: None,
-            bands: &[],
-            empty: "",
-            focused: false,
-        }
-    }
-
     fn level(values: &[f64; 2]) -> Vec<Segment<'_>> {
         vec![Segment { wavenumbers: &[600.0, 1000.0], values }]
     }
@@ -187,7 +166,7 @@ mod tests {
         let areas = [area(&[205.0; 2], &[295.0; 2], false), area(&[240.0; 2], &[260.0; 2], true)];
         let median = level(&[250.0; 2]);
         let curves = [Curve { letter: None, segments: level(&[225.0; 2]) }];
-        let mut view = view();
+        let mut view = TraceView::plain();
         (view.areas, view.median, view.curves) = (&areas, &median, &curves);
         let rows: Vec<char> = drawn(&view).iter().map(|row| row.chars().nth(9).unwrap()).collect();
         assert_eq!(rows, ['.', '.', ':', '-', '*', '.']);
@@ -201,7 +180,7 @@ mod tests {
             Guide { label: "230 K", segments: level(&[230.0; 2]) },
         ];
         let curves = [Curve { letter: None, segments: level(&[245.0; 2]) }];
-        let mut view = view();
+        let mut view = TraceView::plain();
         (view.guides, view.curves) = (&guides, &curves);
         let rows = drawn(&view);
         assert_eq!((rows[0].as_str(), rows[1].as_str()), ("270 K 271 K", &".".repeat(25)[..]));
@@ -213,7 +192,7 @@ mod tests {
         let bars = [Bar { wavenumber: 800.0, low: 240.0, high: 280.0 }];
         let marks = [Mark { wavenumber: 700.0, sign: None }];
         let curves = [Curve { letter: None, segments: level(&[210.0; 2]) }];
-        let mut view = view();
+        let mut view = TraceView::plain();
         (view.bars, view.marks, view.curves) = (&bars, &marks, &curves);
         let rows = drawn(&view);
         assert!(rows[1..4].iter().all(|row| row.contains('|')), "{rows:#?}");

@@ -107,24 +107,7 @@ mod tests {
     const ASCII: Theme = Theme { ascii: true, ..THEME };
 
     fn view<'a>(curves: &'a [Curve<'a>]) -> TraceView<'a> {
-        TraceView {
-            title: "12, 3",
-            quantity: "BT",
-            unit: "K",
-            curves,
-            guides: &[],
-            areas: &[],
-            median: &[],
-            bars: &[],
-            marks: &[],
-            x: (600.0, 1000.0),
-            y: Some((200.0, 300.0)),
-            least: 0.0,
-            channel: None,
-            bands: &[],
-            empty: "",
-            focused: false,
-        }
+        TraceView { curves, ..TraceView::plain() }
     }
 
     fn curve<'a>(letter: Option<char>, pieces: &[(&'a [f64], &'a [f64])]) -> Curve<'a> {

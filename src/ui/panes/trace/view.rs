@@ -117,3 +117,28 @@ pub struct BandName<'a> {
     /// Upper end, cm-1.
     pub high: f64,
 }
+
+#[cfg(test)]
+impl TraceView<'_> {
+    /// Axes from 600 to 1000 cm-1 and 200 to 300 K, and nothing on them.
+    pub fn plain() -> TraceView<'static> {
+        TraceView {
+            title: "12, 3",
+            quantity: "BT",
+            unit: "K",
+            curves: &[],
+            guides: &[],
+            areas: &[],
+            median: &[],
+            bars: &[],
+            marks: &[],
+            x: (600.0, 1000.0),
+            y: Some((200.0, 300.0)),
+            least: 0.0,
+            channel: None,
+            bands: &[],
+            empty: "",
+            focused: false,
+        }
+    }
+}
