@@ -93,7 +93,7 @@ pub struct Across {
     all: usize,
     done: usize,
     /// Granules where it could not be done, with the reason.
-    faults: Vec<String>,
+    faults: Vec<(usize, String)>,
     cancel: Cancel,
 }
 
@@ -182,7 +182,7 @@ pub fn take(app: &mut App, request: u64, entry: usize, found: Result<Brought, St
         Err(why) => {
             let name = app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default();
             if let Some(across) = &mut app.across {
-                across.faults.push(format!("{name}: {why}"));
+                across.faults.push((entry, format!("{name}: {why}")));
             }
         }
     }
@@ -204,11 +204,15 @@ fn finish(app: &mut App) -> Vec<Job> {
     match &across.errand {
         Errand::Compare { .. } => spreading::say_in_tray(app),
         Errand::Decide { deed, at, .. } => {
-            let count: usize = at.values().map(FootprintSet::len).sum();
-            let deed = deed.words();
-            app.say(format!(
-                "{deed} at {count} more in {granules} granules; {undo} takes all back"
-            ));
+            let failed = |entry: &usize| across.faults.iter().any(|(fault, _)| fault == entry);
+            let done = at.iter().filter(|(entry, _)| !failed(entry));
+            let count: usize = done.map(|(_, footprints)| footprints.len()).sum();
+            let words = match deed {
+                // How many of them carried it, their ledgers know.
+                Deed::Flag { give: false, .. } => deed.words(),
+                _ => format!("{} at {count} more", deed.words()),
+            };
+            app.say(format!("{words} in {granules} granules; {undo} takes all back"));
         }
         Errand::Turn { back, .. } => {
             let verb = if *back { "taken back" } else { "put back" };
@@ -220,7 +224,7 @@ fn finish(app: &mut App) -> Vec<Job> {
             app.say(format!("the tests have run in {granules} granules; {sign} signs off by rule"));
         }
     }
-    if let Some(first) = across.faults.first() {
+    if let Some((_, first)) = across.faults.first() {
         let count = across.faults.len();
         let more = if count > 1 { format!(" (and {} more)", count - 1) } else { String::new() };
         let said = app.message.0.clone();

@@ -103,7 +103,7 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     app.tray.set_error(entry, None);
     let first_layer = app.outside.first_layer.clone();
     let mut bench = Bench::new(entry, review, first_layer);
-    bench.doubt.wanted = std::mem::take(&mut app.seek_case);
+    bench.doubt.wanted = app.seek_case.take();
     let (fill, record, quality) = (app.request(), app.request(), app.request());
     bench.filling.request = fill;
     bench.awaited.record = record;
@@ -215,7 +215,7 @@ fn record(
                 // The key may have been meant for what was on show then, so it is not carried out.
                 app.say("the ledgers are read: press the key again");
             }
-            let mut jobs = place.map_or_else(Vec::new, |place| go_to_place(app, &place));
+            let mut jobs = place.map_or_else(Vec::new, |place| go_to_place(app, place));
             if let Some((footprint, words)) = app.seek_footprint.take() {
                 jobs.extend(super::moving::go(app, footprint));
                 app.say(words);
@@ -264,14 +264,17 @@ fn reread(app: &mut App, request: u64, found: LedgerReading) -> Vec<Job> {
     Vec::new()
 }
 
-/// Goes back to where one was, unless keys have gone somewhere else by now.
-fn go_to_place(app: &mut App, place: &Place) -> Vec<Job> {
+/// Goes back to where one was, but for what keys have changed by now.
+fn go_to_place(app: &mut App, place: Place) -> Vec<Job> {
     let asked_for = app.outside.first_layer.is_some();
     let Some(bench) = app.bench_mut() else { return Vec::new() };
-    if bench.touched {
-        return Vec::new();
+    let now = bench.place(&Arrangement::default());
+    let mut place = place.but_for(&bench.begun, now);
+    if bench.selecting.is_on() {
+        // What is being drawn goes on from here.
+        place.cursor = bench.cursor;
     }
-    bench.go_to(place);
+    bench.go_to(&place);
     let layer = place.layer.clone().filter(|layer| !asked_for && *layer != bench.wanted);
     // Whoever has stood the panes otherwise by now keeps them so.
     let mut jobs = Vec::new();

@@ -90,8 +90,8 @@ pub struct App {
     pub table: Table,
     /// The first granule that is not signed off is still being looked for.
     pub searching: bool,
-    /// The first case of doubt of the granule being opened is to be shown.
-    pub seek_case: bool,
+    /// The first case of doubt of the granule being opened is to be shown, as this request asked.
+    pub seek_case: Option<u64>,
     /// The footprint to go to in the granule being opened, as soon as its ledgers are read, and what
     /// is said of it then.
     pub seek_footprint: Option<(usize, String)>,
@@ -149,6 +149,8 @@ pub struct App {
     /// The program is to stop to the shell.
     pub suspend: bool,
     requests: u64,
+    /// The number of the latest request when the latest key, click or paste came.
+    heard: u64,
 }
 
 impl App {
@@ -164,7 +166,7 @@ impl App {
             tray_cursor: 0,
             table: Table::Empty,
             searching: false,
-            seek_case: false,
+            seek_case: None,
             seek_footprint: None,
             then: None,
             left: Vec::new(),
@@ -193,6 +195,7 @@ impl App {
             welcome: None,
             suspend: false,
             requests: 0,
+            heard: 0,
         }
     }
 
@@ -200,6 +203,17 @@ impl App {
     pub fn request(&mut self) -> u64 {
         self.requests += 1;
         self.requests
+    }
+
+    /// A key, a click or a paste comes.
+    pub fn hear(&mut self) {
+        self.heard = self.requests;
+    }
+
+    /// Whether a request is of the latest key: nothing was pressed since. An answer that comes later
+    /// must not turn what the next key is about.
+    pub fn is_latest(&self, request: u64) -> bool {
+        request > self.heard
     }
 
     /// The granule on the table.

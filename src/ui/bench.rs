@@ -110,8 +110,8 @@ pub struct Bench {
     pub overtaken: Overtaken,
     /// A key wanted to decide something while the ledgers were still being read.
     pub asked_early: bool,
-    /// A key has changed what is on show, so that a kept place comes too late.
-    pub touched: bool,
+    /// Where one was when it came on the table: what keys have changed since, a kept place leaves.
+    pub begun: Place,
 }
 
 impl Bench {
@@ -131,7 +131,7 @@ impl Bench {
         };
         let indices = review.first_look().into_iter().map(index).collect();
         let windows = review.window_channels();
-        Bench {
+        let mut bench = Bench {
             entry,
             placement: Arc::clone(&order),
             order,
@@ -168,9 +168,11 @@ impl Bench {
             awaited: Awaited::default(),
             overtaken: Overtaken::default(),
             asked_early: false,
-            touched: false,
+            begun: Place::default(),
             review,
-        }
+        };
+        bench.begun = bench.place(&Arrangement::default());
+        bench
     }
 
     /// Offers what the tests say among the layers that keys step through: the doubt, and how
@@ -340,11 +342,15 @@ impl Bench {
             self.window.show(low, high);
         }
         self.look.quantity = TraceQuantity::named(&place.quantity).unwrap_or_default();
-        self.place_geographically(place.geographic);
+        if place.geographic != self.geographic {
+            self.place_geographically(place.geographic);
+        }
         self.field_zoom = place.field_zoom.min(super::looking::MOST_FIELD_ZOOM);
         let footprints = self.footprints();
         for footprint in place.pins.iter().filter(|one| **one < footprints) {
-            self.pin(*footprint);
+            if !self.pins.iter().any(|pin| pin.footprint == *footprint) {
+                self.pin(*footprint);
+            }
         }
     }
 

@@ -8,6 +8,7 @@ use crate::review::{Record, Refusal, step_name};
 use super::across::{self, Errand};
 use super::app::App;
 use super::bench::RecordState;
+use super::doubting;
 use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
@@ -93,10 +94,12 @@ fn choose_flag(app: &mut App, give: bool) -> Vec<Job> {
         .footprints
         .iter()
         .fold(0, |flags, footprint| flags | record.state().any_flags(footprint));
+    // What footprints of granules that are not on the table carry is known to their ledgers.
+    let unknown = !selection.elsewhere.is_empty();
     let kinds = record.vocabulary().of_scope(Scope::Footprint);
     let flags: Vec<String> = kinds
         .iter()
-        .filter(|kind| give || there & kind.mask() != 0)
+        .filter(|kind| give || unknown || there & kind.mask() != 0)
         .map(|kind| kind.name.clone())
         .collect();
     if flags.is_empty() {
@@ -136,32 +139,48 @@ fn again(app: &mut App) -> Vec<Job> {
 pub fn carry_out(app: &mut App, deed: Deed, selection: Selection) -> Vec<Job> {
     let Selection { footprints, words, elsewhere } = selection;
     let several = !elsewhere.is_empty();
+    let decided_here = footprints.clone();
     if several && across::is_writing(app) {
         return Vec::new();
     }
     let now = app.now();
     let step = several.then(|| step_name(&app.outside.author, now));
     let (again, part) = (deed.clone(), step.clone());
-    let done = decided(app, move |record, _| match several && footprints.is_empty() {
-        true => Ok(words),
-        false => record.as_part_of(part, |record| apply(record, deed, &footprints, &words, now)),
+    let done = decided(app, move |record, _| {
+        if several && footprints.is_empty() {
+            return Ok(words);
+        }
+        match record.as_part_of(part, |record| apply(record, deed, &footprints, &words, now)) {
+            // In others it may stand.
+            Err(Refusal::NotFlagged(_)) if several => Ok(words),
+            outcome => outcome,
+        }
     });
     if !done {
         return Vec::new();
     }
     app.last_deed = Some(again.clone());
+    let mut jobs = Vec::new();
     if let Some(bench) = app.bench_mut() {
         // What the deed was not about stays to be decided.
         match again {
             Deed::FlagChannels { .. } => {
                 bench.drop_channel_pick();
             }
-            _ => bench.selecting.clear(),
+            _ => {
+                bench.selecting.clear();
+                jobs = doubting::go_on(app, &decided_here);
+            }
         }
     }
-    let Some(step) = step else { return Vec::new() };
+    let Some(step) = step else { return jobs };
     let entries: Vec<usize> = elsewhere.keys().copied().collect();
-    across::begin(app, Errand::Decide { deed: again, at: elsewhere, step, now }, &entries)
+    jobs.extend(across::begin(
+        app,
+        Errand::Decide { deed: again, at: elsewhere, step, now },
+        &entries,
+    ));
+    jobs
 }
 
 /// Does something to footprints, which `words` name, or to channels; in words.

@@ -13,7 +13,7 @@ use super::jobs::Job;
 use super::keys::Action;
 use super::looking::no_granule;
 use super::moving;
-use super::overlay::{Overlay, Selection};
+use super::overlay::Selection;
 use super::selecting::Join;
 use super::turning;
 
@@ -24,8 +24,8 @@ pub struct Doubt {
     pub cases: Vec<Case>,
     /// The worst footprints of the cases that were shown, the latest last.
     shown: Vec<usize>,
-    /// The first case is to be shown as soon as the tests have run.
-    pub wanted: bool,
+    /// The first case is to be shown as soon as the tests have run, as this request asked.
+    pub wanted: Option<u64>,
     /// The worst footprint of the case that is shown and selected.
     in_hand: Option<usize>,
     /// It was told that no case is left here: the next time, the next granule is opened.
@@ -33,6 +33,11 @@ pub struct Doubt {
 }
 
 impl Doubt {
+    /// The case in hand was let go.
+    pub fn let_go(&mut self) {
+        self.in_hand = None;
+    }
+
     /// How many footprints are left in doubt.
     pub fn footprints(&self) -> usize {
         self.cases.iter().map(|case| case.footprints.len()).sum()
@@ -65,10 +70,27 @@ pub fn doubt(app: &mut App, action: Action) -> Vec<Job> {
     }
 }
 
-/// The tests have run: the case that was asked for before is shown.
+/// The tests have run: the case that was asked for before is shown, unless keys went on with
+/// something else.
 pub fn tests_have_run(app: &mut App) -> Vec<Job> {
-    let wanted = app.bench_mut().is_some_and(|bench| std::mem::take(&mut bench.doubt.wanted));
-    if wanted { next_case(app) } else { Vec::new() }
+    match app.bench_mut().and_then(|bench| bench.doubt.wanted.take()) {
+        Some(request) if app.is_latest(request) => next_case(app),
+        Some(_) => {
+            let next = app.keymap.hint(Action::NextCase);
+            app.say(format!("the tests have run; {next} shows the first case"));
+            Vec::new()
+        }
+        None => Vec::new(),
+    }
+}
+
+/// Waits for the first case no longer; false where it is not waited for.
+pub fn give_up(app: &mut App) -> bool {
+    let given_up = app.bench_mut().is_some_and(|bench| bench.doubt.wanted.take().is_some());
+    if given_up {
+        app.say("no case is waited for");
+    }
+    given_up
 }
 
 /// Selects the most doubtful case that was not shown yet; behind the last one, a second time goes
@@ -93,9 +115,10 @@ fn next_case(app: &mut App) -> Vec<Job> {
 }
 
 fn not_yet(app: &mut App) -> Vec<Job> {
+    let request = app.request();
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     let running = bench.awaited.screen != 0 || !bench.filling.done;
-    bench.doubt.wanted = running;
+    bench.doubt.wanted = running.then_some(request);
     let run = app.keymap.hint(Action::RunTests);
     match running {
         true => app.say("the first case is shown as soon as the tests have run"),
@@ -120,17 +143,13 @@ fn previous_case(app: &mut App) -> Vec<Job> {
     Vec::new()
 }
 
-/// A case that was in hand and is decided makes room for the next one, whichever key decided it;
-/// one that was let go is no longer in hand.
-pub fn go_on(app: &mut App) -> Vec<Job> {
-    if !matches!(app.overlay, Overlay::None) {
-        return Vec::new();
-    }
+/// Footprints were decided: where the case in hand was among them, it makes room for the next one,
+/// whichever key decided it.
+pub fn go_on(app: &mut App, decided: &FootprintSet) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return Vec::new() };
-    if bench.selecting.is_on() {
+    let Some(worst) = bench.doubt.in_hand.take_if(|worst| decided.contains(*worst)) else {
         return Vec::new();
-    }
-    let Some(worst) = bench.doubt.in_hand.take() else { return Vec::new() };
+    };
     if bench.doubt.cases.iter().any(|case| case.footprints.contains(worst)) {
         return Vec::new();
     }
@@ -143,17 +162,17 @@ pub fn go_on(app: &mut App) -> Vec<Job> {
     jobs
 }
 
-/// After an undo on the way through the cases, the case that is open again is shown.
-pub fn go_back(app: &mut App) -> Vec<Job> {
+/// After an undo on the way through the cases, the case that is open again by it is shown.
+pub fn go_back(app: &mut App, undone: &FootprintSet) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     let doubt = &mut bench.doubt;
-    // Behind the case in hand, or behind the last one.
-    let behind = match (doubt.in_hand, doubt.end_told) {
-        (Some(_), _) => 2,
-        (None, true) => 1,
-        (None, false) => return Vec::new(),
+    if doubt.in_hand.is_none() && !doubt.end_told {
+        return Vec::new();
+    }
+    // The latest that was shown.
+    let Some(before) = doubt.shown.iter().rposition(|worst| undone.contains(*worst)) else {
+        return Vec::new();
     };
-    let Some(before) = doubt.shown.len().checked_sub(behind) else { return Vec::new() };
     let worst = doubt.shown[before];
     let Some(number) = doubt.cases.iter().position(|case| case.worst == worst) else {
         return Vec::new();
@@ -231,7 +250,7 @@ fn next_granule(app: &mut App) -> Vec<Job> {
         return Vec::new();
     };
     let jobs = turning::open(app, entry, Direction::ForwardUnsigned);
-    app.seek_case = true;
+    app.seek_case = Some(app.request());
     jobs
 }
 
@@ -277,16 +296,24 @@ fn rule(
     let Some(bench) = app.bench() else { return no_granule(app) };
     let Some(screened) = bench.tests.screened.clone() else { return not_yet(app) };
     let selection = bench.selection();
-    let words = selection.words.clone();
+    // What the tests suggest is known for the granule on the table alone.
+    let words = match selection.elsewhere.is_empty() {
+        true => selection.words,
+        false => format!("{} in this granule, none in others,", selection.footprints.len()),
+    };
+    let footprints = selection.footprints;
     let screened: Arc<Screened> = screened;
     let decided = deciding::decided(app, |record, now| {
-        let ruled = verb(record, &screened, &selection.footprints, now)?;
+        let ruled = verb(record, &screened, &footprints, now)?;
         Ok(format!("{words} {what}: {}", outcome(&ruled)))
     });
-    if decided && let Some(bench) = app.bench_mut() {
+    if !decided {
+        return Vec::new();
+    }
+    if let Some(bench) = app.bench_mut() {
         bench.selecting.clear();
     }
-    Vec::new()
+    go_on(app, &footprints)
 }
 
 fn outcome(ruled: &Ruled) -> String {

@@ -42,6 +42,13 @@ pub enum Input {
     Mouse(Mouse),
 }
 
+impl Input {
+    /// The mouse moved over the screen with no button down: nothing is asked for.
+    pub fn is_hover(&self) -> bool {
+        matches!(self, Input::Mouse(Mouse { button: Button::Move, .. }))
+    }
+}
+
 /// A mouse report.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct Mouse {

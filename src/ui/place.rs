@@ -32,6 +32,26 @@ pub struct Place {
     pub pins: Vec<usize>,
 }
 
+impl Place {
+    /// This place, kept the last time, but for what differs `now` from where one `begun`.
+    pub fn but_for(self, begun: &Place, now: Place) -> Place {
+        fn one<T: PartialEq>(kept: T, begun: &T, now: T) -> T {
+            if now == *begun { kept } else { now }
+        }
+        Place {
+            cursor: one(self.cursor, &begun.cursor, now.cursor),
+            layer: one(self.layer, &begun.layer, now.layer),
+            channel: one(self.channel, &begun.channel, now.channel),
+            window: one(self.window, &begun.window, now.window),
+            quantity: one(self.quantity, &begun.quantity, now.quantity),
+            field_zoom: one(self.field_zoom, &begun.field_zoom, now.field_zoom),
+            geographic: one(self.geographic, &begun.geographic, now.geographic),
+            pins: one(self.pins, &begun.pins, now.pins),
+            ..self
+        }
+    }
+}
+
 /// The place that a person left a granule at, or none where there is none that can be read.
 pub fn read(campaign: &Campaign, granule: &GranuleIdentity, person: &str) -> Option<Place> {
     serde_json::from_value(campaign.place(granule, person)?).ok()

@@ -93,7 +93,7 @@ pub fn open(app: &mut App, entry: usize, direction: Direction) -> Vec<Job> {
     };
     app.searching = false;
     app.then = None;
-    app.seek_case = false;
+    app.seek_case = None;
     app.seek_footprint = None;
     let mut jobs = keep_place(app);
     put_away(app);

@@ -2,7 +2,7 @@
 
 use jiff::Timestamp;
 
-use crate::flags::OwnTimes;
+use crate::flags::{FootprintSet, OwnTimes};
 
 use super::across::{self, Errand};
 use super::app::{App, Direction};
@@ -64,13 +64,15 @@ fn elsewhere(app: &App, here: &OwnTimes, entry: usize, action: Action) -> Elsewh
 /// Undoes or redoes here, and in all other granules that the same step decided about.
 fn in_this_granule(app: &mut App, action: Action) -> Vec<Job> {
     let (back, now, mut step) = (action == Action::Undo, app.now(), None);
+    let mut about = FootprintSet::empty();
     let done = deciding::decided(app, |record, _| {
         let decision = if back { record.undo(now)? } else { record.redo(now)? };
         step.clone_from(&decision.step);
+        about = decision.act.footprints().cloned().unwrap_or_default();
         let verb = if back { "undone" } else { "redone" };
         Ok(format!("{verb}: {}", words(&decision)))
     });
-    let mut jobs = if done && back { doubting::go_back(app) } else { Vec::new() };
+    let mut jobs = if done && back { doubting::go_back(app, &about) } else { Vec::new() };
     let Some(step) = step.filter(|_| done) else { return jobs };
     let part = |entry: &usize| {
         let standing = app.tray.entry(*entry).and_then(|row| row.standing.as_ref());

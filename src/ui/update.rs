@@ -17,9 +17,12 @@ use super::{
 /// Changes the state by an event and names the jobs to be started.
 pub fn update(app: &mut App, event: Event) -> Vec<Job> {
     match event {
-        Event::Input(Input::Key(key)) => press(app, key),
-        Event::Input(Input::Paste(text)) => typing::paste(app, &text),
-        Event::Input(Input::Mouse(mouse)) => click(app, mouse),
+        Event::Input(input) => {
+            if !input.is_hover() {
+                app.hear();
+            }
+            take_input(app, input)
+        }
         Event::Answer(answer) => answers::take(app, answer),
         Event::LedgerMoved => turning::ledger_moved(app),
         Event::Rested => {
@@ -45,24 +48,33 @@ pub fn update(app: &mut App, event: Event) -> Vec<Job> {
     }
 }
 
-fn press(app: &mut App, key: Key) -> Vec<Job> {
-    app.hovered = None;
-    let mut jobs = take_key(app, key);
-    jobs.extend(doubting::go_on(app));
-    jobs
+fn take_input(app: &mut App, input: Input) -> Vec<Job> {
+    match input {
+        Input::Key(key) if app.layout.is_none() => press_unseen(app, key),
+        // Where nothing is seen nothing is done.
+        _ if app.layout.is_none() => Vec::new(),
+        Input::Key(key) => press(app, key),
+        Input::Paste(text) => typing::paste(app, &text),
+        Input::Mouse(mouse) => click(app, mouse),
+    }
 }
 
-fn take_key(app: &mut App, key: Key) -> Vec<Job> {
-    if let Some(bench) = app.bench_mut() {
-        bench.touched = true;
+/// On a screen that is too small to show what a key does, one can leave, whatever lies over the
+/// panes.
+fn press_unseen(app: &mut App, key: Key) -> Vec<Job> {
+    match app.keymap.action_of(key) {
+        Some(Action::Quit) => {
+            app.overlay = Overlay::None;
+            turning::leave(app)
+        }
+        Some(action @ (Action::Suspend | Action::Redraw)) => act(app, action),
+        _ => Vec::new(),
     }
+}
+
+fn press(app: &mut App, key: Key) -> Vec<Job> {
+    app.hovered = None;
     let action = app.keymap.action_of(key);
-    // Whoever goes on with something else is not to be taken away from it by the first case.
-    if action != Some(Action::NextCase)
-        && let Some(bench) = app.bench_mut()
-    {
-        bench.doubt.wanted = false;
-    }
     // Stopping and drawing anew work whatever lies over the panes.
     let always = matches!(action, Some(Action::Suspend | Action::Redraw));
     if !always && !matches!(app.overlay, Overlay::None) {
@@ -199,7 +211,13 @@ fn cancel(app: &mut App) -> Vec<Job> {
         app.say("stays");
         return Vec::new();
     }
-    let let_go = |bench: &mut Bench| bench.selecting.let_go() || bench.drop_channel_pick();
+    let let_go = |bench: &mut Bench| {
+        let dropped = bench.selecting.let_go() || bench.drop_channel_pick();
+        if !bench.selecting.is_on() {
+            bench.doubt.let_go();
+        }
+        dropped
+    };
     if across::give_up(app) {
         return Vec::new();
     }
@@ -210,6 +228,7 @@ fn cancel(app: &mut App) -> Vec<Job> {
         app.panes.zoom(false);
     } else if !dropped
         && !spreading::give_up(app)
+        && !doubting::give_up(app)
         && !screening::give_up(app)
         && !strip::give_up(app)
     {

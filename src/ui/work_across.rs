@@ -40,7 +40,11 @@ pub fn across(
             Errand::Decide { deed, at, step, now } => decide(path, outside, |record| {
                 let at = at.get(entry).cloned().unwrap_or_default();
                 record.as_part_of(Some(step.clone()), |record| {
-                    deciding::apply(record, deed.clone(), &at, "", *now).map(|_| ())
+                    match deciding::apply(record, deed.clone(), &at, "", *now) {
+                        // Of several granules that are meant, some carry the flag.
+                        Err(Refusal::NotFlagged(_)) | Ok(_) => Ok(()),
+                        Err(refusal) => Err(refusal),
+                    }
                 })
             }),
             Errand::Turn { step, back, now } => {

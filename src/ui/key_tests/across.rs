@@ -111,6 +111,34 @@ fn the_side_that_is_meant_is_the_same_in_all_granules() {
 }
 
 #[test]
+fn what_the_tests_suggest_is_accepted_here_alone_and_says_so() {
+    let place = three_granules();
+    let mut trial = like_in_tray(&place);
+    trial.keys("y");
+    assert!(
+        trial.message().starts_with("5 in this granule, none in others"),
+        "{}",
+        trial.message()
+    );
+}
+
+#[test]
+fn a_flag_is_withdrawn_across_the_tray_from_those_that_carry_it() {
+    let place = three_granules();
+    let mut trial = place.review(&NAMES);
+    trial.keys("n Down Right f d p Down Right L W W");
+    trial.app.bench_mut().unwrap().spread.x = Some(2.5);
+    trial.keys("w d");
+    assert!(
+        trial.message().starts_with("dust_or_ash withdrawn in 2 granules"),
+        "{}",
+        trial.message()
+    );
+    trial.keys("n");
+    assert!(trial.flagged("dust_or_ash").is_empty() && trial.granule() == "b.nc");
+}
+
+#[test]
 fn pressing_it_again_compares_by_the_next_measure() {
     let place = three_granules();
     let mut trial = place.review(&NAMES);
@@ -131,6 +159,7 @@ fn a_granule_that_cannot_be_read_any_more_is_named_and_the_others_are_flagged() 
     std::fs::remove_file(place.path("b.nc")).unwrap();
     trial.keys("f d");
     assert!(trial.message().contains("not in b.nc:"), "{}", trial.message());
+    assert!(trial.message().starts_with("dust_or_ash at 5 more in 1 "), "{}", trial.message());
     assert_eq!(trial.flagged("dust_or_ash").len(), 5);
     trial.keys("Tab 1 Down Down Enter");
     assert_eq!((trial.granule().as_str(), trial.flagged("dust_or_ash").len()), ("c.nc", 5));

@@ -181,15 +181,21 @@ fn signing_off_with_the_tests_leaves_them_the_rest() {
     assert!(tests > 0 && trial.bench().tests.on_record == OnRecord::Same);
 }
 
-#[test]
-fn the_key_may_be_pressed_before_the_tests_have_run() {
-    let place = place(&["lowen_001.nc"]);
+/// A granule is on the table, and jobs wait.
+fn tests_still_run(place: &Place) -> Trial {
     let mut trial = place.review_held(&["lowen_001.nc"]);
     while trial.app.bench().is_none() {
         for answer in trial.answers_of_next() {
             trial.event(crate::ui::event::Event::Answer(answer));
         }
     }
+    trial
+}
+
+#[test]
+fn the_key_may_be_pressed_before_the_tests_have_run() {
+    let place = place(&["lowen_001.nc"]);
+    let mut trial = tests_still_run(&place);
     trial.press("Space");
     assert!(trial.message().contains("as soon as the tests have run"));
     trial.settle();
@@ -198,13 +204,8 @@ fn the_key_may_be_pressed_before_the_tests_have_run() {
 
 #[test]
 fn the_first_case_does_not_break_into_what_was_begun_meanwhile() {
-    let place = place(&["a.nc"]);
-    let mut trial = place.review_held(&["a.nc"]);
-    while trial.app.bench().is_none() {
-        for answer in trial.answers_of_next() {
-            trial.event(crate::ui::event::Event::Answer(answer));
-        }
-    }
+    let place = place(&["lowen_001.nc"]);
+    let mut trial = tests_still_run(&place);
     trial.press("Space");
     assert!(trial.message().starts_with("the first case is shown"), "{}", trial.message());
     trial.press("v");
@@ -213,4 +214,29 @@ fn the_first_case_does_not_break_into_what_was_begun_meanwhile() {
     assert_eq!(trial.bench().selection().words, "box of 1", "what was begun is still in hand");
     trial.keys("Esc Space");
     assert!(trial.bench().selection().words.starts_with("case of"));
+}
+
+#[test]
+fn a_case_waited_for_does_not_break_into_what_came_since() {
+    let place = place(&["lowen_001.nc"]);
+    for (keys, says) in [("Space v Right", "Space shows the first case"), ("Space Esc", "")] {
+        let mut trial = tests_still_run(&place);
+        keys.split_whitespace().for_each(|key| trial.press(key));
+        let box_drawn = trial.bench().selecting.is_on();
+        trial.settle();
+        assert_eq!(trial.bench().selecting.is_on(), box_drawn, "{keys}");
+        assert!(trial.message().contains(says) && !selected(&trial).contains(&10), "{keys}");
+    }
+}
+
+#[test]
+fn only_deciding_a_case_goes_on_and_only_its_undo_goes_back() {
+    let names = ["a.nc", "b.nc"];
+    let place = place(&names);
+    append_byte(&place.path("b.nc"));
+    let mut trial = place.review(&names);
+    trial.keys("Space Space H n u");
+    assert_eq!(selected(&trial), [25], "the undo was about a channel");
+    trial.keys("S y Esc");
+    assert_eq!(trial.granule(), "a.nc", "what was signed off stays on the table");
 }

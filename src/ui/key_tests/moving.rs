@@ -72,6 +72,27 @@ fn the_place_survives_leaving_and_turning_granules() {
 }
 
 #[test]
+fn a_kept_place_comes_back_but_for_what_keys_have_changed_by_then() {
+    let place = Place::with(&["lowen_001.nc"]);
+    let mut trial = place.review(&["lowen_001.nc"]);
+    trial.keys("Right Down x").types(":layer lat").keys("Enter").types(":go 1231").keys("Enter");
+    trial.leave();
+    for (keys, cursor) in [("? Esc", POSITIONS + 1), ("Down Down", 2 * POSITIONS)] {
+        let mut trial = place.review_held(&["lowen_001.nc"]);
+        while trial.app.bench().is_none() {
+            for answer in trial.answers_of_next() {
+                trial.event(Event::Answer(answer));
+            }
+        }
+        keys.split_whitespace().for_each(|key| trial.press(key));
+        trial.settle();
+        let bench = trial.bench();
+        assert_eq!((bench.cursor, bench.layer.text.as_str()), (cursor, "lat"), "{keys}");
+        assert_eq!((bench.channel_wavenumber(), bench.pins.len()), (Some(1231.0), 1), "{keys}");
+    }
+}
+
+#[test]
 fn digits_and_tab_reach_every_pane_and_one_can_have_the_screen() {
     let (_place, mut trial) = one_granule();
     assert!(trial.screen(80, 24).contains("Trace footprint"));

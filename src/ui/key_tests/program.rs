@@ -79,6 +79,19 @@ fn settings_change_the_keys_everywhere() {
 }
 
 #[test]
+fn a_screen_too_small_takes_no_key_but_those_that_leave() {
+    let (_place, mut trial) = one_granule();
+    trial.keys(":");
+    assert!(trial.screen(70, 20).contains("q leaves"));
+    trial.keys("Esc a");
+    assert!(trial.record().decisions().is_empty());
+    assert!(trial.screen(80, 24).contains(':'), "the prompt is still open");
+    trial.screen(70, 20);
+    trial.keys("q");
+    assert_eq!(trial.app.ended, Some(0));
+}
+
+#[test]
 fn the_help_begins_with_the_pane_in_focus() {
     let (_place, mut trial) = one_granule();
     for (keys, title) in [("?", "Field: layers"), ("3 ?", "Trace: spectra"), ("5 ?", "Strip:")] {

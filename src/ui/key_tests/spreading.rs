@@ -146,6 +146,20 @@ fn tests_that_run_anew_leave_a_threshold_alone_that_was_let_go() {
 }
 
 #[test]
+fn what_is_found_late_takes_neither_the_keys_nor_the_selection() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":like angle");
+    ["Enter", "Down"].iter().for_each(|key| trial.press(key));
+    trial.settle();
+    assert!(trial.message().starts_with("compared by spectral angle"), "{}", trial.message());
+    assert!(!trial.bench().selecting.is_on() && trial.app.focus() == Pane::Field);
+    trial.types(":against lon");
+    ["Enter", "Down"].iter().for_each(|key| trial.press(key));
+    trial.settle();
+    assert!(trial.bench().spread.against.is_some() && trial.app.focus() == Pane::Field);
+}
+
+#[test]
 fn what_hangs_together_does_not_depend_on_the_map() {
     let (_place, mut trial) = one_granule();
     trial.keys("Down Down Right L");

@@ -201,11 +201,19 @@ pub fn against(app: &mut App, text: &str) -> Vec<Job> {
 
 /// Takes the second layer.
 pub fn against_found(app: &mut App, request: u64, found: Result<Against, String>) -> Vec<Job> {
+    let latest = app.is_latest(request);
     let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.against == request) else {
         return Vec::new();
     };
     bench.awaited.against = 0;
     match found {
+        Ok(against) if !latest => {
+            // What was drawn on one layer by now means nothing on two.
+            let text = against.text.clone();
+            bench.forget_spread();
+            bench.spread.against = Some(against);
+            app.say(format!("{text} lies upwards in the Spread"));
+        }
         Ok(against) => {
             bench.spread.against = Some(against);
             app.panes.focus_on(crate::ui::panes::Pane::Spread);

@@ -70,14 +70,18 @@ pub fn found(app: &mut App, request: u64, found: Result<Alike, String>) -> Vec<J
             return Vec::new();
         }
     };
+    let words = alike.measure().words();
+    bench.measured = Some(Arc::clone(&alike.measured));
+    if !app.is_latest(request) {
+        app.say(format!("compared by {words}; {like} shows those like the one under the cursor"));
+        return Vec::new();
+    }
     across::end_looking(app);
     let Some(bench) = app.bench_mut() else { return Vec::new() };
     bench.forget_spread();
-    bench.measured = Some(Arc::clone(&alike.measured));
     bench.spread.against = None;
     bench.spread.above = false;
     bench.spread.reach = Reach::Grown;
-    let words = alike.measure().words();
     let cut = first_cut(&alike, &bench.order);
     bench.spread.alike = Some(alike);
     bench.spread.source = Source::Alike;
