@@ -71,22 +71,26 @@ impl Theme {
             Tone::Faint => plain.add_modifier(Modifier::DIM),
             Tone::Strong => plain.add_modifier(Modifier::BOLD),
             Tone::Chosen => plain.add_modifier(Modifier::REVERSED),
-            Tone::Good => self.tinted(Color::Green, [114, 22]),
-            Tone::Warning => self.tinted(Color::Yellow, [179, 94]),
-            Tone::Bad => self.tinted(Color::Red, [203, 124]).add_modifier(Modifier::BOLD),
-            Tone::Accent => self.tinted(Color::Cyan, [110, 24]).add_modifier(Modifier::BOLD),
+            Tone::Good => self.tinted([Color::Green, Color::Blue], [114, 22]),
+            Tone::Warning => self.tinted([Color::Yellow, Color::Magenta], [179, 94]),
+            Tone::Bad => {
+                self.tinted([Color::LightRed, Color::Red], [203, 124]).add_modifier(Modifier::BOLD)
+            }
+            Tone::Accent => {
+                self.tinted([Color::Cyan, Color::Blue], [110, 24]).add_modifier(Modifier::BOLD)
+            }
         }
     }
 
-    fn tinted(&self, sixteen: Color, [on_dark, on_light]: [u8; 2]) -> Style {
+    /// A tint for a dark and for a light ground, of sixteen colours and of 256. Of the sixteen, green,
+    /// yellow and cyan can hardly be read on white.
+    fn tinted(&self, sixteen: [Color; 2], indexed: [u8; 2]) -> Style {
+        let ground = usize::from(self.background == Background::Light);
         match self.depth {
             ColourDepth::None => Style::new(),
-            ColourDepth::Sixteen => Style::new().fg(sixteen),
+            ColourDepth::Sixteen => Style::new().fg(sixteen[ground]),
             ColourDepth::Indexed | ColourDepth::True => {
-                Style::new().fg(Color::Indexed(match self.background {
-                    Background::Dark => on_dark,
-                    Background::Light => on_light,
-                }))
+                Style::new().fg(Color::Indexed(indexed[ground]))
             }
         }
     }
@@ -210,6 +214,68 @@ mod tests {
             for other in 0..tint {
                 assert_ne!(dark.flag_tint(tint).fg, dark.flag_tint(other).fg);
                 assert_ne!(light.flag_tint(tint).fg, light.flag_tint(other).fg);
+            }
+        }
+    }
+
+    /// The sixteen colours as xterm has them unless told otherwise, then the colour cube of 256.
+    fn rgb(colour: Color) -> [u8; 3] {
+        match colour {
+            Color::Red => [205, 0, 0],
+            Color::Green => [0, 205, 0],
+            Color::Yellow => [205, 205, 0],
+            Color::Blue => [0, 0, 238],
+            Color::Magenta => [205, 0, 205],
+            Color::Cyan => [0, 205, 205],
+            Color::LightRed => [255, 0, 0],
+            Color::Indexed(index @ 16..=231) => {
+                let level = |step: u8| if step == 0 { 0 } else { 55 + 40 * step };
+                let place = index - 16;
+                [place / 36, place / 6 % 6, place % 6].map(level)
+            }
+            other => panic!("{other:?} is not used for text"),
+        }
+    }
+
+    /// Relative luminance and contrast ratio as the Web Content Accessibility Guidelines 2.1 define them.
+    fn luminance(rgb: [u8; 3]) -> f64 {
+        let linear = rgb.map(|part| match f64::from(part) / 255.0 {
+            low if low <= 0.03928 => low / 12.92,
+            high => ((high + 0.055) / 1.055).powf(2.4),
+        });
+        0.2126 * linear[0] + 0.7152 * linear[1] + 0.0722 * linear[2]
+    }
+
+    fn contrast(one: [u8; 3], other: [u8; 3]) -> f64 {
+        let (one, other) = (luminance(one), luminance(other));
+        (one.max(other) + 0.05) / (one.min(other) + 0.05)
+    }
+
+    #[test]
+    fn contrast_is_that_of_the_guidelines() {
+        // Black on white is 21 : 1, and #777777 on white just misses 4.5 : 1, as the guidelines say.
+        assert!((contrast([0; 3], [255; 3]) - 21.0).abs() < 1e-9);
+        assert!((contrast([0x77; 3], [255; 3]) - 4.48).abs() < 0.01);
+    }
+
+    #[test]
+    fn text_stands_out_from_a_dark_and_from_a_light_ground() {
+        // The guidelines ask 4.5 : 1 of text and 3 : 1 of bold text and signs. The sixteen colours are the
+        // terminal's own and no more than a likely case.
+        let grounds = [(Background::Dark, [16; 3]), (Background::Light, [255; 3])];
+        for (background, ground) in grounds {
+            for (depth, least) in [(ColourDepth::Indexed, 4.5), (ColourDepth::Sixteen, 3.0)] {
+                let theme = theme(depth, background);
+                for tone in TONES {
+                    if let Some(colour) = theme.style(tone).fg {
+                        let found = contrast(rgb(colour), ground);
+                        assert!(found >= least, "{tone:?} {background:?} {depth:?}: {found:.1}");
+                    }
+                }
+            }
+            for tint in 0..8 {
+                let tint = theme(ColourDepth::Indexed, background).flag_tint(tint).fg.unwrap();
+                assert!(contrast(rgb(tint), ground) >= 4.5, "{tint:?} {background:?}");
             }
         }
     }

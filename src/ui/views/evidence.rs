@@ -112,13 +112,16 @@ fn decided(bench: &Bench, rows: &mut Vec<EvidenceRow>) {
     rows.extend(decisions(record, bench.cursor));
 }
 
-/// The latest decisions about a footprint that stand: what, who, when, why.
+/// The latest decisions about a footprint that stand: what, who, when, why. What tests decided is told
+/// in one line: why they did is the next thing that the Evidence tells.
 fn decisions(record: &Record, footprint: usize) -> Vec<EvidenceRow> {
     let about = |decision: &&Decision| {
         decision.act.footprints().is_some_and(|footprints| footprints.contains(footprint))
     };
     let stand = record.decisions().iter().zip(record.standing()).filter(|(_, stands)| **stands);
-    let mut latest: Vec<&Decision> = stand.map(|(decision, _)| decision).filter(about).collect();
+    let stand = stand.map(|(decision, _)| decision).filter(about);
+    let (mut latest, tests): (Vec<&Decision>, Vec<&Decision>) =
+        stand.partition(|decision| decision.by_person());
     let skipped = latest.len().saturating_sub(MOST_DECISIONS);
     latest.drain(..skipped);
     latest.reverse();
@@ -129,6 +132,11 @@ fn decisions(record: &Record, footprint: usize) -> Vec<EvidenceRow> {
     if skipped > 0 {
         rows.push(EvidenceRow::Words(format!("and {skipped} before"), Tone::Faint));
     }
+    let by_tests = tests.last().map(|last| {
+        let time = last.at.strftime("%Y-%m-%d %H:%M");
+        EvidenceRow::Words(format!("{time} {}", last.speaker()), Tone::Faint)
+    });
+    rows.extend(by_tests);
     rows
 }
 
