@@ -48,6 +48,20 @@ fn spectra_are_compared_across_the_tray_and_flagged_in_one_step() {
 }
 
 #[test]
+fn what_is_selected_already_is_joined_with_those_of_all_granules() {
+    let place = three_granules();
+    let mut trial = place.review(&NAMES);
+    // Footprint 29 first, then those like 7.
+    trial.keys("G v v 2 g Down Right L W W");
+    trial.app.bench_mut().unwrap().spread.x = Some(2.5);
+    assert!(trial.screen(120, 40).contains("1 + 15: 16 selected"), "{}", trial.screen(120, 40));
+    trial.keys("f d");
+    assert_eq!(trial.flagged("dust_or_ash"), [5, 6, 7, 8, 9, 29]);
+    trial.keys("n");
+    assert_eq!(trial.flagged("dust_or_ash"), [5, 6, 7, 8, 9]);
+}
+
+#[test]
 fn one_undo_takes_it_back_everywhere_and_one_redo_puts_it_back_after_a_restart_too() {
     let place = three_granules();
     let mut trial = like_in_tray(&place);

@@ -1,5 +1,7 @@
 //! What is selected, and how the next selection goes together with it.
 
+use std::collections::{BTreeMap, BTreeSet};
+
 use crate::flags::FootprintSet;
 use crate::system::Cancel;
 use crate::ui::overlay::Selection;
@@ -102,18 +104,29 @@ impl Selecting {
             let nothing = Selection::of(FootprintSet::empty(), "selection of 0".to_owned());
             return if join.takes_away() { nothing } else { new };
         };
-        let footprints = join.of(&kept.footprints, &new.footprints);
-        let words = match join {
-            Join::Anew => new.words,
-            _ => format!("selection of {}", footprints.len()),
+        if join == Join::Anew {
+            return new;
+        }
+        let none = FootprintSet::empty();
+        let entries: BTreeSet<usize> =
+            kept.elsewhere.keys().chain(new.elsewhere.keys()).copied().collect();
+        let at = |entry: usize| {
+            let (old, new) = (kept.elsewhere.get(&entry), new.elsewhere.get(&entry));
+            (entry, join.of(old.unwrap_or(&none), new.unwrap_or(&none)))
         };
-        Selection::of(footprints, words)
+        let elsewhere: BTreeMap<usize, FootprintSet> =
+            entries.into_iter().map(at).filter(|(_, set)| !set.is_empty()).collect();
+        let footprints = join.of(&kept.footprints, &new.footprints);
+        let mut joined = Selection { footprints, words: String::new(), elsewhere };
+        let several = if joined.elsewhere.is_empty() { "" } else { " in several granules" };
+        joined.words = format!("selection of {}{several}", joined.count());
+        joined
     }
 
     /// Selects; what was being drawn is let go. Nothing is selected where that leaves nothing.
     pub fn take(&mut self, join: Join, new: Selection) {
         let joined = self.joined(join, new);
-        self.replace((!joined.footprints.is_empty()).then_some(joined));
+        self.replace((joined.count() > 0).then_some(joined));
     }
 
     /// Selects all others of `count` footprints.

@@ -43,6 +43,10 @@ pub fn switch(app: &mut App) -> Vec<Job> {
     let others = across::others(app);
     let like = app.keymap.hint(Action::Alike);
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
+    if bench.awaited.alike != 0 {
+        app.say("one moment: the spectra are being compared");
+        return Vec::new();
+    }
     if bench.spread_alike().is_none() {
         app.say(format!("{like} finds spectra like the one under the cursor first"));
         return Vec::new();

@@ -28,7 +28,9 @@ impl Bench {
     /// What persons said about the test's flag; where a layer is on show, about any flag that keeps a
     /// footprint from the retrieval.
     fn persons_words(&self) -> Vec<Option<PersonsWord>> {
-        let Some(record) = self.record.open() else { return Vec::new() };
+        // How alike spectra are says nothing about a flag.
+        let record = self.record.open().filter(|_| self.spread_alike().is_none());
+        let Some(record) = record else { return Vec::new() };
         let kinds = record.vocabulary().of_scope(Scope::Footprint);
         let excluding = kinds.iter().filter(|kind| kind.excludes).map(|kind| kind.name.as_str());
         let flags = match self.tried_flag() {

@@ -68,7 +68,7 @@ fn selected(bench: &Bench) -> String {
     let count = bench.selection().count();
     match (bench.selecting.kept(), bench.shape_selection()) {
         (Some(kept), Some(shape)) => {
-            let (kept, shape) = (kept.footprints.len(), shape.footprints.len());
+            let (kept, shape) = (kept.count(), shape.count());
             match bench.selecting.join {
                 Join::Anew => format!("{count} selected"),
                 join => format!("{kept} {} {shape}: {count} selected", join.sign()),
