@@ -251,6 +251,7 @@ fn anywhere() -> Surface {
     Surface {
         name: "anywhere".to_owned(),
         places: Vec::new(),
+        unknown: false,
         note: String::new(),
         start: BTreeMap::new(),
         weights: BTreeMap::new(),
@@ -260,6 +261,7 @@ fn anywhere() -> Surface {
 fn surface(table: &mut TableReader<'_, '_>) -> Option<Surface> {
     let name = table.needed_text("name");
     let places = table.expressions("where");
+    let unknown = table.truth("unknown");
     let note = table.text("note").unwrap_or_default();
     let start = table.numbers_by_name("start").into_iter().map(|(name, _, n)| (name, n)).collect();
     let mut weights = BTreeMap::new();
@@ -282,7 +284,7 @@ fn surface(table: &mut TableReader<'_, '_>) -> Option<Surface> {
             }
         }
     }
-    Some(Surface { name: name?, places, note, start, weights })
+    Some(Surface { name: name?, places, unknown, note, start, weights })
 }
 
 fn test(table: &mut TableReader<'_, '_>, surfaces: &[(Range<usize>, Surface)]) -> Option<Test> {

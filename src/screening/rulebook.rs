@@ -75,6 +75,9 @@ pub struct Surface {
     pub name: String,
     /// Where it is: the first of these that the file allows; everywhere else where there is none.
     pub places: Vec<Expression>,
+    /// Whether it stands for ground of which nothing is known: what is lost against the ground that is
+    /// known best counts as silent.
+    pub unknown: bool,
     /// What a user should know.
     pub note: String,
     /// Log-odds to start from, by flag; 0 where none is given.

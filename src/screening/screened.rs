@@ -123,7 +123,34 @@ impl<'r> Councils<'r> {
                 }
             }
         }
-        Self { rulebook, seats }
+        let mut councils = Self { rulebook, seats };
+        let unknown = (0..rulebook.surfaces.len()).filter(|at| rulebook.surfaces[*at].unknown);
+        unknown.for_each(|surface| councils.seat_the_lost(surface));
+        councils
+    }
+
+    /// On ground of which nothing is known the families that speak on the ground with most of them, and not
+    /// here, sit silent: coverage and doubt show what is lost.
+    fn seat_the_lost(&mut self, surface: usize) {
+        let rulebook = self.rulebook;
+        for flag in rulebook.flags() {
+            let of = |at: usize| self.seats.get(&(at, flag)).map_or(&[][..], Vec::as_slice);
+            let is_here = |family: &str| of(surface).iter().any(|seat| seat.family == family);
+            let known = (0..rulebook.surfaces.len()).filter(|at| !rulebook.surfaces[*at].unknown);
+            let best = known.map(of).max_by_key(|seats| seats.len()).unwrap_or_default();
+            let lost = best.iter().filter(|seat| !seat.optional && !is_here(seat.family));
+            let silent = |seat: &Seat<'r>| Seat {
+                family: seat.family,
+                weight: rulebook.surfaces[surface].weight_of(flag, seat.family),
+                optional: false,
+                tests: Vec::new(),
+            };
+            let lost: Vec<Seat<'r>> = lost.map(silent).collect();
+            // A flag that nothing here speaks about stays one that is not tested.
+            if let Some(council) = self.seats.get_mut(&(surface, flag)) {
+                council.extend(lost);
+            }
+        }
     }
 
     /// Who speaks about a flag on a surface.

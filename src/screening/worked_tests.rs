@@ -221,6 +221,34 @@ fn what_the_file_lacks_is_said_and_the_rest_is_done() {
     assert_eq!(flags(&screened, CONVECTION), ["cloudy"]);
 }
 
+/// What is lost shows in coverage where a family falls silent, and in doubt wherever a limit is less sure.
+/// The clear scene as it is has no doubt to speak of.
+#[test]
+fn every_loss_shows_in_coverage_or_doubt() {
+    let rulebook = builtin().unwrap();
+    let said = |lost: &[&str]| {
+        // A slant path of 1.25, for which the substitutes without the angle have their limits.
+        let mut names = scenes().with("view_zenith", &[36.87; SCENES.len()]);
+        lost.iter().for_each(|name| drop(names.named.remove(*name)));
+        let evidence = screen(&rulebook, &names).evidence(CLEAR).unwrap();
+        assert!(evidence.assessed, "what can be done is done without {lost:?}");
+        let of = |flag: &str| {
+            let found = evidence.flags.iter().find(|one| one.flag == flag).unwrap();
+            (found.coverage, found.doubt)
+        };
+        [of("cloudy"), of("thin_cloud")]
+    };
+    let whole = said(&[]);
+    for lost in [&["land"][..], &["night", "solar_zenith"], &["land", "night", "view_zenith"]] {
+        for (flag, whole) in said(lost).iter().zip(&whole) {
+            assert!(flag.0 < whole.0 && flag.1 > whole.1, "{lost:?}: {flag:?} {whole:?}");
+        }
+    }
+    // Limits that grow with the slant path have substitutes; they are softer, and so say less.
+    let without_view = said(&["view_zenith"]);
+    assert!(without_view[1].1 > whole[1].1, "{without_view:?} {whole:?}");
+}
+
 /// One test that needs a channel, and nothing else.
 const LONELY: &str = r#"
 format = "radsieve rulebook 1"

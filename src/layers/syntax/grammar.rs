@@ -43,10 +43,19 @@ fn whole(input: &mut Input<'_>) -> Read<Node> {
             Some('=') => unexpected(input, "== to compare"),
             Some('&' | '|' | '!') => unexpected(input, "the words and, or, not"),
             Some(')') => unexpected(input, "an operator or the end: no ( is open"),
+            _ if starts_with_unit(rest(input)) => unexpected(
+                input,
+                "an operator or the end; a place in the spectrum stands in bt or rad, as in bt(11.1um)",
+            ),
             _ => unexpected(input, "an operator or the end"),
         };
     }
     Ok(tree)
+}
+
+/// Whether a number before this is likely to be meant as a place in the spectrum.
+fn starts_with_unit(rest: &str) -> bool {
+    ["cm", "um", "µm", "nm", "THz", "GHz"].iter().any(|unit| rest.starts_with(unit))
 }
 
 fn disjunction(input: &mut Input<'_>) -> Read<Node> {

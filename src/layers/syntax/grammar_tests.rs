@@ -158,7 +158,10 @@ fn messages_point_at_the_place() {
 #[test]
 fn near_functions_are_offered() {
     assert_eq!(mistake("sdd3(bt(900))").near[0], "sd3");
+    let told = Expression::parse("mean4(bt(900))").unwrap_err().to_string();
+    assert!(told.contains("there is no function mean4") && told.contains("mean mean3?"), "{told}");
     assert_eq!(mistake("arctan(3)").near, Vec::<String>::new());
+    assert!(mistake("11.1um").expected.ends_with("stands in bt or rad, as in bt(11.1um)"));
     assert_eq!(mistake("Bt(900)").near[0], "bt");
 }
 

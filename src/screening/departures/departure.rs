@@ -10,10 +10,9 @@ const WINDOW: f64 = 900.3;
 
 /// What every retrieval of this kind takes, and where among the inputs.
 pub const OBSERVED: usize = 0;
-pub const SPREAD: usize = 2;
-pub const LAND: usize = 3;
-pub const ZENITH: usize = 4;
-pub const COMMON: usize = 5;
+pub const LAND: usize = 2;
+pub const ZENITH: usize = 3;
+pub const COMMON: usize = 4;
 
 /// `departure(nu)` and `departure_bias(nu)`.
 #[derive(Debug, Default)]
@@ -29,11 +28,9 @@ impl Departures {
 /// The inputs that tell which footprints are clear.
 pub fn common_inputs() -> Vec<Input> {
     let (observed, calculated) = (format!("bt({WINDOW})"), format!("bt_clear({WINDOW})"));
-    let spread = format!("sd3({observed} - {calculated})");
     let texts = [
         (observed, true),
         (calculated, true),
-        (spread, false),
         ("land".to_owned(), false),
         ("view_zenith".to_owned(), false),
     ];
@@ -63,8 +60,12 @@ pub fn difference(inputs: &[Option<&[f64]>], observed: usize) -> Vec<f64> {
 pub fn scene(names: &dyn Names, inputs: &[Option<&[f64]>]) -> (Classes, Vec<usize>) {
     let lent = |place: usize| inputs.get(place).copied().flatten();
     let classes = Classes::of(names.cluster(), lent(ZENITH), names.footprints());
-    let window =
-        Window { departures: difference(inputs, OBSERVED), spread: lent(SPREAD), land: lent(LAND) };
+    let window = Window {
+        departures: difference(inputs, OBSERVED),
+        lines: names.lengths().first().copied().unwrap_or(0),
+        detectors: classes.detectors(),
+        land: lent(LAND),
+    };
     (classes, window.clear())
 }
 

@@ -9,7 +9,7 @@ use crate::forward::{
     View,
 };
 use crate::granule::Channel;
-use crate::layers::{FakeNames, Neighbours, Retrieval, neighbourhood_spread};
+use crate::layers::{FakeNames, Retrieval};
 use crate::spectral::brightness_temperature_or_nan;
 
 /// Scan lines, positions, detectors.
@@ -124,11 +124,9 @@ impl Made {
     ) -> (Vec<Vec<f64>>, Vec<String>) {
         let observed = self.temperatures(channels, true);
         let calculated = self.temperatures(channels, false);
-        let window: Vec<f64> = observed[0].iter().zip(&calculated[0]).map(|(o, c)| o - c).collect();
-        let spread = neighbourhood_spread(&window, &Neighbours::by_array(&LENGTHS));
         let land = vec![0.0; FOOTPRINTS];
         let zeniths: Vec<f64> = (0..FOOTPRINTS).map(zenith).collect();
-        let common = [&observed[0], &calculated[0], &spread, &land, &zeniths];
+        let common = [&observed[0], &calculated[0], &land, &zeniths];
         let mut inputs: Vec<Option<&[f64]>> =
             common.iter().map(|column| Some(&column[..])).collect();
         assert_eq!(inputs.len(), COMMON);
@@ -242,7 +240,7 @@ fn without_clear_footprints_there_is_no_departure() {
     let nothing = vec![f64::NAN; FOOTPRINTS];
     let zeniths: Vec<f64> = (0..FOOTPRINTS).map(zenith).collect();
     let mut inputs: Vec<Option<&[f64]>> =
-        vec![Some(&observed[0]), Some(&nothing), None, None, Some(&zeniths)];
+        vec![Some(&observed[0]), Some(&nothing), None, Some(&zeniths)];
     for _ in ranked.iter() {
         inputs.extend([Some(&observed[0][..]), Some(&nothing[..])]);
     }

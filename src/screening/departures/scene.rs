@@ -10,6 +10,11 @@ const FROM_WARM_EDGE: f64 = 1.5;
 const WARM_EDGE: f64 = 0.9;
 /// Clear footprints differ no more than this from those around, K.
 const EVEN: f64 = 0.5;
+/// So many of nine places must be there to tell.
+const PLACES: usize = 4;
+/// No calculation is wrong by more than this in the window, K; what departs further is no clear sky:
+/// above an inversion cloud is warmer than the ground.
+const LARGEST_BIAS: f64 = 4.0;
 /// From this share of land on a footprint is no sea.
 const LAND: f64 = 0.1;
 
@@ -94,23 +99,24 @@ impl Classes {
 pub struct Window<'w> {
     /// Observed minus calculated, K.
     pub departures: Vec<f64>,
-    /// Their spread over each neighbourhood, K; nothing where there are no neighbourhoods.
-    pub spread: Option<&'w [f64]>,
+    /// Scan lines.
+    pub lines: usize,
+    /// Detectors at each position.
+    pub detectors: usize,
     /// Share of land.
     pub land: Option<&'w [f64]>,
 }
 
 impl Window<'_> {
     /// The footprints that are taken for clear, without asking what the calculation says about other
-    /// channels: even, and near the warm edge of all even ones. Those over sea where there are enough
-    /// of them, for the ground's temperature is calculated badly.
+    /// channels: even, and near the warm edge of all even ones that depart no further than a calculation
+    /// is wrong by. Those over sea where there are enough of them, for the ground's temperature is
+    /// calculated badly.
     pub fn clear(&self) -> Vec<usize> {
-        let is_even = |at: &usize| {
-            self.spread.is_none_or(|spread| spread.get(*at).is_some_and(|s| *s <= EVEN))
-        };
+        let is_even = |at: &usize| self.spread(*at) <= EVEN;
         let is_sea =
             |at: &usize| self.land.is_some_and(|land| land.get(*at).is_some_and(|l| *l < LAND));
-        let there = |at: &usize| !self.departures[*at].is_nan();
+        let there = |at: &usize| self.departures[*at].abs() <= LARGEST_BIAS;
         let even: Vec<usize> =
             (0..self.departures.len()).filter(|at| there(at) && is_even(at)).collect();
         let at_sea: Vec<usize> = even.iter().copied().filter(is_sea).collect();
@@ -123,6 +129,27 @@ impl Window<'_> {
         };
         let near = |at: &usize| (self.departures[*at] - edge).abs() <= FROM_WARM_EDGE;
         among.into_iter().filter(near).collect()
+    }
+
+    /// The standard deviation of the departures of the same detector at the places beside a footprint and
+    /// its own, K; missing where fewer than [`PLACES`] are there. Detectors are not compared with each
+    /// other: one that is dead or biased would make all the others look uneven.
+    fn spread(&self, footprint: usize) -> f64 {
+        let places = self.departures.len() / (self.lines * self.detectors).max(1);
+        let place = footprint / self.detectors;
+        let (line, position) = (place / places.max(1), place % places.max(1));
+        let beside = |at: usize, end: usize| at.saturating_sub(1)..(at + 2).min(end);
+        let around: Vec<f64> = beside(line, self.lines)
+            .flat_map(|line| beside(position, places).map(move |position| line * places + position))
+            .map(|place| self.departures[place * self.detectors + footprint % self.detectors])
+            .filter(|departure| !departure.is_nan())
+            .collect();
+        if around.len() < PLACES {
+            return f64::NAN;
+        }
+        let mean = around.iter().sum::<f64>() / around.len() as f64;
+        let squares: f64 = around.iter().map(|one| (one - mean).powi(2)).sum();
+        (squares / around.len() as f64).sqrt()
     }
 }
 
@@ -142,18 +169,31 @@ mod tests {
 
     #[test]
     fn clear_are_the_even_ones_near_the_warm_edge() {
-        // Five clear at +0.3 K, an even deck at -4 K, an edge that is warm but uneven, land far off.
-        let mut departures = vec![0.3; 12];
-        departures.extend([-4.0; 6]);
-        departures.extend([0.2, f64::NAN, 5.0]);
-        let mut spread = vec![0.2; 18];
-        spread.extend([2.0, 0.1, 0.1]);
-        let mut land = vec![0.0; 20];
-        land.push(1.0);
-        let window = Window { departures, spread: Some(&spread), land: Some(&land) };
-        assert_eq!(window.clear(), (0..12).collect::<Vec<_>>());
-        let nothing = Window { departures: vec![f64::NAN; 4], spread: None, land: None };
+        // Three lines of eight positions: clear sea at +0.3 K, from the fourth position on an even deck 3 K
+        // colder, cloud above an inversion in the last two.
+        let line = [0.3, 0.3, 0.3, -2.7, -2.7, -2.7, 9.0, 9.0];
+        let departures = [line; 3].concat();
+        let window = Window { departures, lines: 3, detectors: 1, land: None };
+        // The third position has the deck beside it, and so has the fourth the sea.
+        assert_eq!(window.clear(), [0, 1, 8, 9, 16, 17]);
+        let nothing = Window { departures: vec![f64::NAN; 4], lines: 2, detectors: 1, land: None };
         assert!(nothing.clear().is_empty());
+    }
+
+    #[test]
+    fn a_dead_detector_makes_no_other_one_uneven() {
+        let departures: Vec<f64> =
+            (0..50).map(|at| if at % 2 == 1 { -150.0 } else { 0.1 }).collect();
+        let window = Window { departures, lines: 5, detectors: 2, land: None };
+        assert_eq!(window.clear(), (0..25).map(|place| 2 * place).collect::<Vec<_>>());
+    }
+
+    #[test]
+    fn the_sea_is_asked_where_there_is_enough_of_it() {
+        let (departures, lines) = (vec![0.0; 100], 10);
+        let coast: Vec<f64> = (0..100).map(|at| if at % 10 < 2 { 0.0 } else { 1.0 }).collect();
+        let window = Window { departures, lines, detectors: 1, land: Some(&coast) };
+        assert_eq!(window.clear().len(), 20);
     }
 
     #[test]
