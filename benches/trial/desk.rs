@@ -44,7 +44,8 @@ impl Granule {
     /// What the ledgers of a campaign come to.
     pub fn state(&self, campaign: &Campaign) -> FlagState {
         let decisions = read_ledgers(campaign, &self.identity).decisions;
-        FlagState::replay(self.truth.len(), &decisions, &Vocabulary::released())
+        let bands = &self.identity.bands;
+        FlagState::replay(self.truth.len(), bands, &decisions, &Vocabulary::released())
     }
 
     /// The cases that are left.

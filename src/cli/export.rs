@@ -1,11 +1,11 @@
 //! `radsieve export`: masks and lists from the ledgers.
 
-use std::io::Write;
 use std::path::{Path, PathBuf};
 
 use serde_json::json;
 
 use super::inputs::{Inputs, Reading};
+use super::output::{Output, tell_refused};
 use super::{Exit, surroundings};
 use crate::export::{Exported, Exporter, Form, Provenance};
 use crate::flags::Campaign;
@@ -61,7 +61,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let now = surroundings::now()?;
     let campaign = Campaign::open(&arguments.campaign)?;
     for problem in &campaign.settings().problems {
-        eprintln!("radsieve: {}", clean_text(problem));
+        say!("radsieve: {}", clean_text(problem));
     }
     let opening = arguments.reading.opening()?;
     let provenance = Provenance {
@@ -75,37 +75,40 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let mut exporter =
         Exporter::new(&campaign, &opening.program, provenance, form, &arguments.out, &files)?;
     let mut results = Vec::new();
+    let mut output = Output::default();
     for file in &files {
         let granule = opening.open(file);
-        let result = granule.map_err(Into::into).and_then(|granule| exporter.export(&granule));
+        let result = granule.map_err(Into::into).and_then(|granule| {
+            tell_refused(&granule);
+            exporter.export(&granule)
+        });
         let result = result.map_err(|error: crate::export::NotExported| error.to_string());
-        tell(file, &result, arguments.json)?;
+        tell(file, &result, (!arguments.json).then_some(&mut output));
         results.push((file.as_path(), result));
     }
     if arguments.json {
-        writeln!(std::io::stdout(), "{}", summary(&results))?;
+        output.line(summary(&results));
     }
     let failed = results.iter().filter(|(_, result)| result.is_err()).count();
-    Ok(Exit::of_many(results.len() - failed, failed))
+    output.end(Exit::of_many(results.len() - failed, failed))
 }
 
 /// Messages on standard error; the file's name on standard output, for scripts.
-fn tell(file: &Path, result: &Result<Exported, String>, json: bool) -> std::io::Result<()> {
+fn tell(file: &Path, result: &Result<Exported, String>, names: Option<&mut Output>) {
     let file = clean_text(&file.display().to_string());
     match result {
         Ok(exported) => {
             for message in &exported.messages {
-                eprintln!("radsieve: {file}: {}", clean_text(message));
+                say!("radsieve: {file}: {}", clean_text(message));
             }
-            if !json {
-                writeln!(std::io::stdout(), "{}", exported.path.display())?;
+            if let Some(output) = names {
+                output.path(&exported.path);
             }
         }
         // Messages of granules begin with the path already.
-        Err(error) if error.starts_with(&file) => eprintln!("radsieve: {}", clean_text(error)),
-        Err(error) => eprintln!("radsieve: {file}: {}", clean_text(error)),
+        Err(error) if error.starts_with(&file) => say!("radsieve: {}", clean_text(error)),
+        Err(error) => say!("radsieve: {file}: {}", clean_text(error)),
     }
-    Ok(())
 }
 
 fn summary(results: &[(&Path, Result<Exported, String>)]) -> serde_json::Value {

@@ -144,6 +144,11 @@ fn read_layout(path: &Path) -> anyhow::Result<LayoutFile> {
 /// # Errors
 /// The system does not tell where the program lies.
 fn reader_program() -> anyhow::Result<ReaderProgram> {
+    // The very file that runs, even where another version has taken its name meanwhile.
+    let running = Path::new("/proc/self/exe");
+    if running.exists() {
+        return Ok(ReaderProgram::new(running.to_owned()));
+    }
     let program = std::env::current_exe().context("cannot find this program to read files with")?;
     Ok(ReaderProgram::new(program))
 }
@@ -201,8 +206,8 @@ fn say_left_out(masks: Vec<PathBuf>) {
     let Some(first) = masks.first().and_then(|path| path.file_name()) else { return };
     let first = clean_text(&first.to_string_lossy());
     match masks.len() {
-        1 => eprintln!("radsieve: {first} is left out: it goes by the name of a mask"),
-        count => eprintln!("radsieve: {count} files left out by their names as masks: {first}, …"),
+        1 => say!("radsieve: {first} is left out: it goes by the name of a mask"),
+        count => say!("radsieve: {count} files left out by their names as masks: {first}, …"),
     }
 }
 
@@ -212,8 +217,12 @@ fn same_file(path: &Path) -> PathBuf {
 }
 
 fn expand_list(list: &mut impl BufRead, files: &mut Vec<PathBuf>) -> anyhow::Result<()> {
-    for line in list.split(b'\n') {
+    for (number, line) in list.split(b'\n').enumerate() {
         let mut line = line.context("cannot read the list of files")?;
+        // Some editors begin a text file with a byte-order mark.
+        if number == 0 && line.starts_with(b"\xef\xbb\xbf") {
+            line.drain(..3);
+        }
         if line.last() == Some(&b'\r') {
             line.pop();
         }
@@ -229,7 +238,8 @@ fn expand(path: &Path, files: &mut Vec<PathBuf>) -> anyhow::Result<()> {
         let found = files_in(path)?;
         if found.is_empty() {
             let endings = ENDINGS.join(", .");
-            return Err(UsageError(format!("{} holds no .{endings} files", path.display())).into());
+            let shown = clean_text(&path.to_string_lossy());
+            return Err(UsageError(format!("{shown} holds no .{endings} files")).into());
         }
         files.extend(found);
     } else if path.exists() || !has_wildcard(path) {
@@ -379,7 +389,7 @@ mod tests {
 
     #[test]
     fn a_list_on_standard_input_may_have_blank_lines() {
-        let found = expanded(&["-".into()], "/no/a.nc\r\n\n  \n/no/b.nc").unwrap();
+        let found = expanded(&["-".into()], "\u{feff}/no/a.nc\r\n\n  \n/no/b.nc").unwrap();
         assert_eq!(found, ["a.nc", "b.nc"]);
     }
 

@@ -7,6 +7,9 @@
 // Printing is this room's job; nobody else may.
 #![allow(clippy::print_stdout, clippy::print_stderr)]
 
+#[macro_use]
+mod output;
+
 mod describe;
 mod exit;
 mod export;
@@ -82,6 +85,7 @@ enum Command {
 /// Parses the command line, runs the command, reports a failure on standard error.
 pub fn main() -> ExitCode {
     surroundings::write_without_file_locks();
+    surroundings::outlive_the_limit_on_file_sizes();
     let arguments = match Arguments::try_parse() {
         Ok(arguments) => arguments,
         Err(error) => {
@@ -97,13 +101,17 @@ pub fn main() -> ExitCode {
             if let Some(broken_pipe) = exit::quiet_end(&error) {
                 return broken_pipe.into();
             }
-            eprintln!("radsieve: {}", exit::words(&error));
+            say!("radsieve: {}", output::clean_lines(&exit::words(&error)));
             exit::of_error(&error).into()
         }
     }
 }
 
 fn run(command: Command) -> anyhow::Result<Exit> {
+    // The review has the terminal to give back and does so itself; a reader is ended by its parent.
+    if !matches!(command, Command::Review(_) | Command::Reader(_)) {
+        surroundings::leave_nothing_half_written();
+    }
     match command {
         Command::Review(arguments) => review::run(arguments),
         Command::Describe(arguments) => describe::run(arguments),

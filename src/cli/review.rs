@@ -97,9 +97,13 @@ mod on_screen {
         app.welcome = welcome(&arguments, is_new, &app);
         let ended = ui::run(app)?;
         if let Some(unwritten) = &ended.unwritten {
-            eprintln!("radsieve: {unwritten}");
+            say!("radsieve: {unwritten}");
         }
-        Ok(if ended.code == 0 { Exit::Done } else { Exit::Signal(ended.code) })
+        Ok(match (ended.code, ended.unwritten) {
+            (0, None) => Exit::Done,
+            (0, Some(_)) => Exit::Failed,
+            (code, _) => Exit::Signal(code),
+        })
     }
 
     /// What helps at the first look: that signs may be broken, else where the keys are found.

@@ -13,6 +13,7 @@ use super::footprint_at::{footprint, indices};
 use super::heights::{CloudTop, Heights, cloud_top, cloud_top_words};
 use super::inputs::{Inputs, Reading};
 use super::instrument::{instrument, instrument_words, write_spectrum_evidence};
+use super::output::{Output, tell_refused};
 use super::rules::rulebook_or_builtin;
 use super::{Exit, surroundings};
 use crate::flags::{Author, Campaign, CampaignError, QualityMap};
@@ -80,6 +81,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let heights = arguments.heights.method()?;
     let open = |file: &Path| -> anyhow::Result<Review> {
         let review = Review::open(&opening, file)?.heeding(&quality).taking(heights.clone());
+        tell_refused(review.granule());
         let bases = read_bases(&arguments.campaign, review.granule(), &opening)?;
         Ok(review.knowing(bases))
     };
@@ -92,20 +94,21 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     }
     let desk = if arguments.dry_run { None } else { Some(desk(&arguments, &rulebook)?) };
     let mut failed = 0;
+    let mut output = Output::default();
     let mut entries = Vec::new();
     for file in &files {
         let outcome = open(file).and_then(|review| one_file(&review, &rulebook, desk.as_ref()));
         failed += usize::from(outcome.is_err());
-        tell(file, &outcome, arguments.json)?;
+        tell(file, &outcome, (!arguments.json).then_some(&mut output));
         if arguments.json {
             entries.push(entry(file, &outcome));
         }
     }
     if arguments.json {
         let answer = json!({ "schema": 1, "rulebook": head(&rulebook), "files": entries });
-        writeln!(std::io::stdout(), "{answer}")?;
+        output.line(answer);
     }
-    Ok(Exit::of_many(files.len() - failed, failed))
+    output.end(Exit::of_many(files.len() - failed, failed))
 }
 
 /// The rulebook that was named, else the campaign's own, else the built-in one.
@@ -133,7 +136,7 @@ fn desk(arguments: &Arguments, rulebook: &Rulebook) -> anyhow::Result<Desk> {
     let now = surroundings::now()?;
     let campaign = Campaign::open_or_create(&arguments.campaign)?;
     for problem in &campaign.settings().problems {
-        eprintln!("radsieve: {}", clean_text(problem));
+        say!("radsieve: {}", clean_text(problem));
     }
     let vocabulary = &campaign.settings().vocabulary;
     for flag in rulebook.flags() {
@@ -165,43 +168,45 @@ fn record(desk: &Desk, review: &Review, screened: &Screened) -> anyhow::Result<R
     let identity = review.identify()?;
     let mut record = Record::open(&desk.campaign, identity, &desk.author, version, desk.now)?;
     for problem in record.problems() {
-        eprintln!("radsieve: {}", clean_text(problem));
+        say!("radsieve: {}", clean_text(problem));
     }
-    record.producer_decides(review.producer(), desk.now)?;
-    let recorded = record.tests_decide(screened, desk.now)?;
+    let of_producer = record.producer_decides(review.producer(), desk.now)?;
+    let mut recorded = record.tests_decide(screened, desk.now)?;
+    recorded.written += of_producer.written;
+    recorded.replaced += of_producer.replaced;
+    recorded.unchanged &= of_producer.unchanged;
     record.close(PATIENCE).with_context(|| review.granule().name())?;
     Ok(recorded)
 }
 
 /// One line about each file on standard output; what went wrong on standard error.
-fn tell(file: &Path, outcome: &anyhow::Result<Outcome>, json: bool) -> std::io::Result<()> {
+fn tell(file: &Path, outcome: &anyhow::Result<Outcome>, lines: Option<&mut Output>) {
     let file = clean_text(&file.display().to_string());
     match outcome {
         Ok(outcome) => {
             for other in outcome.recorded.iter().flat_map(|recorded| &recorded.others) {
                 let other = clean_text(other);
-                eprintln!("radsieve: {file}: decisions of the rulebook {other} stand as well");
+                say!("radsieve: {file}: decisions of the rulebook {other} stand as well");
             }
             for problem in &outcome.producer.problems {
-                eprintln!("radsieve: {file}: {problem}");
+                say!("radsieve: {file}: {problem}");
             }
-            if !json {
+            if let Some(output) = lines {
                 for one in &outcome.producer.rejections {
                     let (count, flag) = (one.footprints.len(), &one.flag);
                     let words = format!("{}: {count} footprints {flag}, {}", one.variable, one.why);
-                    eprintln!("radsieve: {file}: rejected by the producer's {words}");
+                    say!("radsieve: {file}: rejected by the producer's {words}");
                 }
-                writeln!(std::io::stdout(), "{file}: {}", line(&outcome.screened))?;
+                output.line(format_args!("{file}: {}", line(&outcome.screened)));
             }
         }
         Err(error) => {
             let words = format!("{error:#}");
             let named = words.contains(&file);
             let words = clean_text(&words);
-            eprintln!("radsieve: {}", if named { words } else { format!("{file}: {words}") });
+            say!("radsieve: {}", if named { words } else { format!("{file}: {words}") });
         }
     }
-    Ok(())
 }
 
 fn line(screened: &Screened) -> String {

@@ -9,6 +9,7 @@ use serde_json::{Map, Value};
 use super::Exit;
 use super::footprint_at::{footprint, indices};
 use super::inputs::Reading;
+use super::output::tell_refused;
 use super::spectrum_energy::{EnergyView, stretches};
 use super::table::{cell, present, stream_error};
 use crate::granule::{Granule, Quantity};
@@ -41,6 +42,7 @@ pub struct Arguments {
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let position = indices("--at", &arguments.at)?;
     let granule = arguments.reading.opening()?.open(&arguments.file)?;
+    tell_refused(&granule);
     let footprint = footprint("--at", granule.footprints(), &position)?;
     let review = Review::of(granule);
     let spectrum = review.read_spectrum(footprint)?;

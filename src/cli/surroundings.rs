@@ -1,11 +1,13 @@
 //! What a command takes from its surroundings: who, where, when.
 
 use std::env;
+use std::sync::Arc;
 
 use jiff::Timestamp;
 
 use super::exit::UsageError;
 use crate::flags::Author;
+use crate::system::remove_unfinished;
 
 /// The campaign folder where none is named.
 pub const DEFAULT_CAMPAIGN: &str = "radsieve-campaign";
@@ -47,6 +49,27 @@ pub fn now() -> Result<Timestamp, UsageError> {
 pub fn is_utf8(locale: &str) -> bool {
     let name = locale.to_ascii_lowercase();
     name.contains("utf-8") || name.contains("utf8")
+}
+
+/// Makes a write beyond the limit on file sizes (`ulimit -f`) fail with an error, which is told, in place
+/// of ending the program.
+pub fn outlive_the_limit_on_file_sizes() {
+    // A handler that does nothing but set a flag; without it all is as it was.
+    let _ = signal_hook::flag::register(signal_hook::consts::SIGXFSZ, Arc::default());
+}
+
+/// Ends the program on a signal as it would have ended, but removes what is half written before.
+pub fn leave_nothing_half_written() {
+    use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM};
+    use signal_hook::iterator::Signals;
+    // Where the signals cannot be heard, they end the program all the same.
+    let Ok(mut signals) = Signals::new([SIGHUP, SIGINT, SIGTERM]) else { return };
+    std::thread::spawn(move || {
+        for signal in signals.forever() {
+            remove_unfinished();
+            let _ = signal_hook::low_level::emulate_default_handler(signal);
+        }
+    });
 }
 
 /// Makes HDF5 write without locks. A file is written under a name of its own before it is moved into

@@ -1,12 +1,13 @@
 //! `radsieve synth`: synthetic granules with their truth.
 
-use std::io::{IsTerminal, Write};
+use std::io::IsTerminal;
 use std::path::PathBuf;
 
 use indicatif::{ProgressBar, ProgressStyle};
 
 use super::Exit;
 use super::exit::UsageError;
+use super::output::Output;
 use crate::synth::{
     Calculation, DEFAULT_SEED, Recipe, SceneName, Shape, make_calculated, make_granule,
 };
@@ -134,19 +135,20 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         anyhow::anyhow!("cannot make the folder {}: {error}", arguments.out.display())
     })?;
     let cancel = Cancel::new();
+    let mut output = Output::default();
     for Planned { recipe, path, calculated } in planned {
         let name = recipe.file_name();
         let progress = Progress::new(&name);
         make_granule(recipe, &path, &cancel, &mut |done, all| progress.at(done, all))?;
         progress.end();
-        writeln!(std::io::stdout(), "{}", path.display())?;
+        output.path(&path);
         if let Some((kind, path)) = calculated {
-            eprintln!("calculating {}", recipe.calculated_file_name());
+            say!("calculating {}", recipe.calculated_file_name());
             make_calculated(recipe, kind, &path, &cancel)?;
-            writeln!(std::io::stdout(), "{}", path.display())?;
+            output.path(&path);
         }
     }
-    Ok(Exit::Done)
+    output.end(Exit::Done)
 }
 
 /// A bar on a terminal; elsewhere a plain line at the start.
@@ -163,7 +165,7 @@ impl Progress {
             bar.set_message(name.to_owned());
             return Progress(bar);
         }
-        eprintln!("making {name}");
+        say!("making {name}");
         Progress(ProgressBar::hidden())
     }
 

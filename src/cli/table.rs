@@ -24,24 +24,34 @@ pub enum Form {
     JsonLines,
 }
 
-/// The columns before the layers, by their names.
+/// The columns before the layers, by their names; none where there is no such column.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Heading {
-    file: bool,
+    file: Option<String>,
     dimensions: Vec<String>,
-    latitude: bool,
-    longitude: bool,
+    latitude: Option<String>,
+    longitude: Option<String>,
+}
+
+/// The name of a column; another one where the file has a dimension of that name, whose indices stand
+/// under it.
+pub fn beside(dimensions: &[String], name: &str) -> String {
+    match dimensions.iter().any(|dimension| dimension == name) {
+        true => format!("{name}_of_footprint"),
+        false => name.to_owned(),
+    }
 }
 
 impl Heading {
     /// What a granule has; `file` where several files share the table.
     pub fn of(granule: &Granule, file: bool) -> Self {
-        let place = granule.geolocation();
+        let (place, dimensions) = (granule.geolocation(), granule.footprints().names());
+        let column = |there: bool, name: &str| there.then(|| beside(dimensions, name));
         Self {
-            file,
-            dimensions: granule.footprints().names().to_vec(),
-            latitude: place.latitude.is_some(),
-            longitude: place.longitude.is_some(),
+            file: column(file, "file"),
+            latitude: column(place.latitude.is_some(), "lat"),
+            longitude: column(place.longitude.is_some(), "lon"),
+            dimensions: dimensions.to_vec(),
         }
     }
 
@@ -62,18 +72,18 @@ impl Heading {
     pub fn lacks(&self, granule: &Granule) -> Vec<&'static str> {
         let place = granule.geolocation();
         let mut lacking = Vec::new();
-        lacking.extend((place.latitude.is_some() && !self.latitude).then_some("lat"));
-        lacking.extend((place.longitude.is_some() && !self.longitude).then_some("lon"));
+        lacking.extend((place.latitude.is_some() && self.latitude.is_none()).then_some("lat"));
+        lacking.extend((place.longitude.is_some() && self.longitude.is_none()).then_some("lon"));
         lacking
     }
 
     /// Writes the head line.
     pub fn write(&self, layers: &[String], out: &mut dyn Write) -> io::Result<()> {
         let mut names: Vec<&str> = Vec::new();
-        names.extend(self.file.then_some("file"));
+        names.extend(self.file.as_deref());
         names.extend(self.dimensions.iter().map(String::as_str));
-        names.extend(self.latitude.then_some("lat"));
-        names.extend(self.longitude.then_some("lon"));
+        names.extend(self.latitude.as_deref());
+        names.extend(self.longitude.as_deref());
         names.extend(layers.iter().map(String::as_str));
         csv::Writer::from_writer(out).write_record(names).map_err(stream_error)
     }
@@ -140,16 +150,17 @@ impl Row<'_> {
         writer: &mut csv::Writer<Vec<u8>>,
         buffer: &mut Vec<u8>,
     ) -> Result<(), csv::Error> {
-        if self.heading.file {
+        if self.heading.file.is_some() {
             writer.write_field(self.file)?;
         }
         for index in self.grid.position(self.footprint) {
             writer.write_field(index.to_string())?;
         }
-        let latitude = self.heading.latitude.then(|| self.value(&self.place.latitude));
-        let longitude = self.heading.longitude.then(|| self.value(&self.place.longitude));
+        let heading = self.heading;
+        let latitude = heading.latitude.iter().map(|_| self.value(&self.place.latitude));
+        let longitude = heading.longitude.iter().map(|_| self.value(&self.place.longitude));
         let layers = self.layers.iter().map(|layer| layer.values[self.footprint]);
-        for value in latitude.into_iter().chain(longitude).chain(layers) {
+        for value in latitude.chain(longitude).chain(layers) {
             buffer.clear();
             write_cell(value, buffer);
             writer.write_field(&buffer)?;
@@ -165,23 +176,25 @@ impl Row<'_> {
 impl Serialize for Row<'_> {
     fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
         let mut row = serializer.serialize_map(None)?;
-        if self.heading.file {
-            row.serialize_entry("file", self.file)?;
+        // Each line names what its own granule has.
+        let dimensions = self.grid.names();
+        if self.heading.file.is_some() {
+            row.serialize_entry(&beside(dimensions, "file"), self.file)?;
         }
-        for (name, index) in self.grid.names().iter().zip(self.grid.position(self.footprint)) {
+        for (name, index) in dimensions.iter().zip(self.grid.position(self.footprint)) {
             row.serialize_entry(name, &index)?;
         }
         for (name, field) in [("lat", &self.place.latitude), ("lon", &self.place.longitude)] {
             if field.is_some() {
-                row.serialize_entry(name, &present(self.value(field)))?;
+                row.serialize_entry(&beside(dimensions, name), &present(self.value(field)))?;
             }
         }
         for (at, layer) in self.layers.iter().enumerate() {
             // A key must not come twice: `lat` may be asked for and is there already.
             let there = |name: &str| name == layer.expression;
-            let known = self.grid.names().iter().any(|name| there(name))
-                || (there("lat") && self.place.latitude.is_some())
-                || (there("lon") && self.place.longitude.is_some())
+            let known = dimensions.iter().any(|name| there(name))
+                || (there(&beside(dimensions, "lat")) && self.place.latitude.is_some())
+                || (there(&beside(dimensions, "lon")) && self.place.longitude.is_some())
                 || self.layers[..at].iter().any(|before| there(&before.expression));
             if !known {
                 row.serialize_entry(&layer.expression, &present(layer.values[self.footprint]))?;
@@ -258,6 +271,13 @@ mod tests {
             prop_assert_eq!(cell.parse::<f64>().ok(), Some(value));
             prop_assert_eq!(cell.len(), value.to_string().len());
         }
+    }
+
+    #[test]
+    fn a_dimension_keeps_its_name_and_a_column_gives_way() {
+        let dimensions = ["lat".to_owned(), "lon".to_owned()];
+        assert_eq!(beside(&dimensions, "lat"), "lat_of_footprint");
+        assert_eq!(beside(&dimensions, "file"), "file");
     }
 
     #[test]

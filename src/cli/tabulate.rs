@@ -4,6 +4,8 @@ use std::io::{self, BufWriter, Write};
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
+use anyhow::Context;
+
 use super::Exit;
 use super::exit::{self, UsageError};
 use super::heights::Heights;
@@ -13,7 +15,7 @@ use super::table::{Form, Heading, write_rows};
 use crate::granule::{Granule, Opening, ProblemKind};
 use crate::layers::{Expression, GranuleNames, Judgements, Kept, Layer, LayerError, evaluate_all};
 use crate::screening::{CloudHeight, Departures, RankedChannels, Rulebook, screen};
-use crate::system::{Cancel, WriteError, clean_text, write_whole};
+use crate::system::{Cancel, FileStamp, WriteError, clean_text, write_whole};
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
@@ -77,15 +79,35 @@ enum Failure {
 pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let plan = plan(&arguments)?;
     let tally = match &arguments.output {
-        None => {
-            let mut out = BufWriter::new(io::stdout().lock());
-            let tally = tabulate(&plan, &mut out)?;
-            out.flush()?;
-            tally
-        }
-        Some(target) => into_file(&plan, target)?,
+        Some(target) if target.as_os_str() != "-" => into_target(&plan, target)?,
+        _ => into_stream(&plan, io::stdout().lock())?,
     };
     Ok(tally.exit())
+}
+
+fn into_stream(plan: &Plan, stream: impl Write) -> io::Result<Tally> {
+    let mut out = BufWriter::new(stream);
+    let tally = tabulate(plan, &mut out)?;
+    out.flush()?;
+    Ok(tally)
+}
+
+/// Writes to what a name stands for: a link's own target stays a file behind that link, a pipe or device
+/// is written into.
+fn into_target(plan: &Plan, target: &Path) -> anyhow::Result<Tally> {
+    let target = target.canonicalize().unwrap_or_else(|_| target.to_owned());
+    let Ok(there) = std::fs::metadata(&target) else { return into_file(plan, &target) };
+    let stamp = FileStamp::from(&there);
+    if plan.files.iter().any(|file| FileStamp::of(file).is_ok_and(|input| input == stamp)) {
+        let words = format!("--output: {} is one of the inputs", shown(&target));
+        return Err(UsageError(words).into());
+    }
+    if there.is_file() {
+        return into_file(plan, &target);
+    }
+    let stream = std::fs::OpenOptions::new().write(true).open(&target);
+    let stream = stream.with_context(|| format!("cannot write to {}", shown(&target)))?;
+    Ok(into_stream(plan, stream)?)
 }
 
 fn plan(arguments: &Arguments) -> anyhow::Result<Plan> {
@@ -137,7 +159,7 @@ fn tabulate(plan: &Plan, out: &mut dyn Write) -> io::Result<Tally> {
             Ok(()) => tally.done += 1,
             Err(Failure::Output(error)) => return Err(error),
             Err(Failure::File(error)) => {
-                eprintln!("radsieve: {}", exit::words(&error));
+                say!("radsieve: {}", exit::words(&error));
                 tally.failed += 1;
                 let unknown = error.downcast_ref().is_some_and(LayerError::is_unknown_name);
                 tally.unknown_names += usize::from(unknown);
@@ -180,10 +202,7 @@ fn one_file(
     let lacking = if plan.form == Form::Csv { heading.lacks(&granule) } else { Vec::new() };
     if !lacking.is_empty() && !plan.quiet {
         let columns = lacking.join(" and ");
-        eprintln!(
-            "radsieve: {}: its {columns} are left out, for the first file has none",
-            shown(file)
-        );
+        say!("radsieve: {}: its {columns} are left out, for the first file has none", shown(file));
     }
     write_rows(plan.form, heading, &name, &granule, &layers, out).map_err(Failure::Output)
 }
@@ -223,12 +242,12 @@ fn tell(file: &str, granule: &Granule, layers: &[Layer]) {
     for problem in granule.problems().iter().chain(&noticed) {
         // What a file merely lacks matters here only where a layer asks for it.
         if problem.kind != ProblemKind::Missing {
-            eprintln!("radsieve: {file}: {problem}");
+            say!("radsieve: {file}: {problem}");
         }
     }
     for layer in layers {
         for note in &layer.notes {
-            eprintln!("radsieve: {file}: {}: {note}", clean_text(&layer.expression));
+            say!("radsieve: {file}: {}: {note}", clean_text(&layer.expression));
         }
     }
 }

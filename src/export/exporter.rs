@@ -6,7 +6,7 @@ use super::mask::{ExportError, write_mask};
 use super::of_granule::granule_identity;
 use super::provenance::{Provenance, Record};
 use super::source::MaskSource;
-use super::target::{NoTarget, Targets, mask_owner};
+use super::target::{Chosen, NoTarget, Targets, mask_owner};
 use super::usable_list::{list_owner, write_usable_list};
 use crate::flags::{
     Campaign, Counts, FlagState, GranuleState, LedgerProblem, LedgerReading, Loss, Vocabulary,
@@ -111,12 +111,18 @@ impl<'a> Exporter<'a> {
     /// The granule or a whole ledger file cannot be read, or nothing can be written.
     pub fn export(&mut self, granule: &Granule) -> Result<Exported, NotExported> {
         let source = MaskSource::of(granule)?;
-        let reading = read_ledgers(self.campaign, &granule_identity(granule)?);
+        let identity = granule_identity(granule)?;
+        let reading = read_ledgers(self.campaign, &identity);
         if let Some(problem) = reading.problems.iter().find(|problem| problem.loss == Loss::File) {
             return Err(NotExported::Ledger(problem.to_string()));
         }
         let vocabulary = &self.campaign.settings().vocabulary;
-        let state = FlagState::replay(source.footprint_count(), &reading.decisions, vocabulary);
+        let state = FlagState::replay(
+            source.footprint_count(),
+            &identity.bands,
+            &reading.decisions,
+            vocabulary,
+        );
         let mut messages = ledger_messages(&reading, &state);
         let record = Record { decisions: &reading.decisions, state: &state, vocabulary };
         let path = self.write(granule.path(), &source, &record, &reading, &mut messages)?;
@@ -132,23 +138,41 @@ impl<'a> Exporter<'a> {
         messages: &mut Vec<String>,
     ) -> Result<PathBuf, NotExported> {
         let (form, program) = (self.form, self.program);
-        let chosen = self.targets.choose(input, source, |path| match form {
-            Form::Mask => mask_owner(program, path),
-            Form::UsableList => list_owner(path, source),
-        })?;
-        messages.extend(chosen.note);
-        match form {
+        loop {
+            let chosen = self.targets.choose(input, source, |path| match form {
+                Form::Mask => mask_owner(program, path),
+                Form::UsableList => list_owner(path, source),
+            })?;
+            match self.write_to(&chosen, source, record, reading) {
+                // Another export was quicker: that name is looked at anew. There are three.
+                Err(error) if error.is_taken() => {}
+                written => {
+                    written?;
+                    messages.extend(chosen.note);
+                    return Ok(chosen.path);
+                }
+            }
+        }
+    }
+
+    fn write_to(
+        &self,
+        chosen: &Chosen,
+        source: &MaskSource,
+        record: &Record<'_>,
+        reading: &LedgerReading,
+    ) -> Result<(), ExportError> {
+        match self.form {
             Form::Mask => {
                 let mut provenance = self.provenance.clone();
                 provenance.ledger_problems =
                     reading.problems.iter().map(LedgerProblem::without_folder).collect();
-                write_mask(source, record, &provenance, &chosen.path)?;
+                write_mask(source, record, &provenance, &chosen.path, chosen.placing).map(drop)
             }
             Form::UsableList => {
-                write_usable_list(source, record, &chosen.path)?;
+                write_usable_list(source, record, &chosen.path, chosen.placing).map(drop)
             }
         }
-        Ok(chosen.path)
     }
 }
 

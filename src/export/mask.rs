@@ -7,7 +7,7 @@ use super::mask_layout::Mask;
 use super::provenance::{Provenance, Record};
 use super::source::MaskSource;
 use crate::netcdf_files::{NetcdfWriter, WriterError};
-use crate::system::{WriteError, clean_text, write_whole};
+use crate::system::{Placing, WriteError, clean_text, place_whole};
 
 /// Why a mask or a list was not written.
 #[derive(Debug, thiserror::Error)]
@@ -28,7 +28,15 @@ pub enum ExportError {
     },
 }
 
-/// Writes the mask of a granule to `target`, whole or not at all.
+impl ExportError {
+    /// Whether somebody else has put a file under that name meanwhile.
+    pub fn is_taken(&self) -> bool {
+        matches!(self, Self::Mask(WriteError::Taken { .. }) | Self::List(WriteError::Taken { .. }))
+    }
+}
+
+/// Writes the mask of a granule to `target`, whole or not at all, over what stands there or only
+/// where nothing does.
 ///
 /// Gives the problems that the mask carries in its attributes: those of the granule, of the
 /// ledgers and of flags that do not fit the granule.
@@ -40,6 +48,7 @@ pub fn write_mask(
     record: &Record<'_>,
     provenance: &Provenance,
     target: &Path,
+    placing: Placing,
 ) -> Result<Vec<String>, ExportError> {
     let (flags, granule) = (record.state.review.len(), source.footprint_count());
     if flags != granule {
@@ -51,7 +60,7 @@ pub fn write_mask(
     problems.extend(record.state.problems.iter().cloned());
     problems.extend(mask.misfits());
     let problems: Vec<String> = problems.iter().map(|problem| clean_text(problem)).collect();
-    write_whole(target, |temporary| {
+    place_whole(target, placing, |temporary| {
         let mut writer = NetcdfWriter::create(temporary)?;
         write_globals(&mut writer, source, record, provenance, &problems)?;
         mask.define(&mut writer)?;

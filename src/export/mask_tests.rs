@@ -10,6 +10,7 @@ use crate::flags::{
     ReviewState, Scope, SpotCheck, Stratum, Vocabulary,
 };
 use crate::netcdf_files::{AttributeValue, FileReader, ReadLimits, ReaderProgram, Samples};
+use crate::system::Placing;
 
 pub(super) fn source() -> MaskSource {
     let band = |name: &str, dimension: &str, first: f64| MaskBand {
@@ -66,7 +67,10 @@ fn some_decisions() -> Vec<Decision> {
         flag("unusual", 2..4, None),
         flag("bad_spectrum", 5..6, Some("sw")),
         Act::FlagChannels { flag: "dead".to_owned(), channels: vec![channel] },
-        Act::SignOff { rest_assessed: FootprintSet::range(6..10), summary: String::new() },
+        Act::SignOff {
+            rest_assessed: [3, 5, 6, 7, 8, 9].into_iter().collect(),
+            summary: String::new(),
+        },
     ])
 }
 
@@ -86,9 +90,9 @@ fn write(
     vocabulary: &Vocabulary,
     target: &Path,
 ) -> Vec<String> {
-    let state = FlagState::replay(source.footprint_count(), decisions, vocabulary);
+    let state = FlagState::replay(source.footprint_count(), &[], decisions, vocabulary);
     let record = Record { decisions, state: &state, vocabulary };
-    write_mask(source, &record, &provenance(), target).unwrap()
+    write_mask(source, &record, &provenance(), target, Placing::Over).unwrap()
 }
 
 struct Mask {
@@ -279,9 +283,9 @@ fn flags_that_do_not_fit_the_granule_are_told() {
     let path = dir.path().join("mask.nc");
     let problems = write(&source(), &odd, &Vocabulary::released(), &path);
     assert_eq!(problems.len(), 5, "{problems:?}");
-    let state = FlagState::replay(3, &[], &Vocabulary::released());
+    let state = FlagState::replay(3, &[], &[], &Vocabulary::released());
     let record = Record { decisions: &[], state: &state, vocabulary: &Vocabulary::released() };
-    let error = write_mask(&source(), &record, &provenance(), &path).unwrap_err();
+    let error = write_mask(&source(), &record, &provenance(), &path, Placing::Over).unwrap_err();
     assert!(error.to_string().contains("3 footprints"), "{error}");
 }
 
@@ -329,9 +333,9 @@ fn a_list_holds_the_usable_footprints_with_their_places() {
     let dir = tempfile::tempdir().unwrap();
     let path = dir.path().join("list.csv");
     let (source, decisions, vocabulary) = (source(), some_decisions(), Vocabulary::released());
-    let state = FlagState::replay(12, &decisions, &vocabulary);
+    let state = FlagState::replay(12, &[], &decisions, &vocabulary);
     let record = Record { decisions: &decisions, state: &state, vocabulary: &vocabulary };
-    assert_eq!(write_usable_list(&source, &record, &path).unwrap(), 6);
+    assert_eq!(write_usable_list(&source, &record, &path, Placing::Over).unwrap(), 6);
     let text = std::fs::read_to_string(&path).unwrap();
     let lines: Vec<&str> = text.lines().collect();
     assert_eq!(lines[0], "scan_line,position,lat,lon,bands_lost,granule");

@@ -43,8 +43,9 @@ pub fn granule_identity(granule: &Granule) -> Result<GranuleIdentity, GranuleErr
     let Identity { size, hash } = granule.hash()?.clone();
     let grid = granule.footprints();
     let footprints = grid.names().iter().cloned().zip(grid.lengths().iter().copied()).collect();
+    let bands = granule.bands().iter().map(|band| band.name.clone()).collect();
     let read_with = granule.read_with()?;
-    Ok(GranuleIdentity { hash, size, name: granule.name(), footprints, read_with })
+    Ok(GranuleIdentity { hash, size, name: granule.name(), footprints, bands, read_with })
 }
 
 fn mask_band(band: &Band) -> MaskBand {

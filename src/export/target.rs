@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 
 use super::source::MaskSource;
 use crate::netcdf_files::{FileReader, ReadLimits, ReaderProgram};
-use crate::system::FileStamp;
+use crate::system::{FileStamp, Placing};
 
 /// How much of a hash goes into a name.
 const SHORT: usize = 8;
@@ -27,6 +27,8 @@ pub enum Owner {
 pub struct Chosen {
     /// Where to write.
     pub path: PathBuf,
+    /// Over an earlier export of the same granule, or where nothing stands.
+    pub placing: Placing,
     /// Why it is not the plain name, if so.
     pub note: Option<String>,
 }
@@ -82,7 +84,9 @@ impl Targets {
                     self.taken.insert(path.clone(), input.to_owned());
                     let shown = path.file_name().unwrap_or_default().to_string_lossy();
                     let note = why.map(|why| format!("{why}; written as {shown}"));
-                    return Ok(Chosen { path, note });
+                    let there = std::fs::symlink_metadata(&path).is_ok();
+                    let placing = if there { Placing::Over } else { Placing::New };
+                    return Ok(Chosen { path, placing, note });
                 }
                 Some(obstacle) => why = why.or(Some(obstacle)),
             }

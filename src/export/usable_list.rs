@@ -7,7 +7,7 @@ use super::provenance::Record;
 use super::source::MaskSource;
 use super::target::Owner;
 use crate::granule::FootprintGrid;
-use crate::system::write_whole;
+use crate::system::{Placing, place_whole};
 
 /// The column that says which granule a row is of.
 const OWNER: &str = "granule";
@@ -26,6 +26,7 @@ pub fn write_usable_list(
     source: &MaskSource,
     record: &Record<'_>,
     target: &Path,
+    placing: Placing,
 ) -> Result<usize, ExportError> {
     let (flags, granule) = (record.state.review.len(), source.footprint_count());
     if flags != granule {
@@ -35,7 +36,7 @@ pub fn write_usable_list(
         (0..granule).filter(|&at| record.state.usable(at, record.vocabulary)).collect();
     let (names, lengths) = source.footprints.iter().cloned().unzip();
     let grid = FootprintGrid::new(names, lengths);
-    write_whole(target, |temporary| {
+    place_whole(target, placing, |temporary| {
         let mut csv = csv::Writer::from_path(temporary)?;
         csv.write_record(header(source))?;
         for &footprint in &usable {
@@ -48,8 +49,14 @@ pub fn write_usable_list(
 
 fn header(source: &MaskSource) -> Vec<String> {
     let mut header: Vec<String> = source.footprints.iter().map(|(name, _)| name.clone()).collect();
-    header.extend(source.latitude.iter().map(|_| "lat".to_owned()));
-    header.extend(source.longitude.iter().map(|_| "lon".to_owned()));
+    let is_there = |name: &str| source.footprints.iter().any(|(dimension, _)| dimension == name);
+    // A dimension keeps its name, as in tables.
+    let column = |name: &str| match is_there(name) {
+        true => format!("{name}_of_footprint"),
+        false => name.to_owned(),
+    };
+    header.extend(source.latitude.iter().map(|_| column("lat")));
+    header.extend(source.longitude.iter().map(|_| column("lon")));
     header.extend(["bands_lost".to_owned(), OWNER.to_owned()]);
     header
 }
@@ -79,7 +86,10 @@ fn row(
 /// Whose the list at `path` is, where `source` may be its granule.
 pub fn list_owner(path: &Path, source: &MaskSource) -> Owner {
     let Ok(mut csv) = csv::Reader::from_path(path) else { return Owner::Other };
-    let column = csv.headers().ok().and_then(|names| names.iter().position(|name| name == OWNER));
+    let column = csv.headers().ok().and_then(|names| {
+        // A dimension may go by that name; the column of ours is the last one.
+        names.iter().enumerate().filter(|(_, name)| *name == OWNER).map(|(at, _)| at).last()
+    });
     let Some(column) = column else { return Owner::Other };
     match csv.records().next() {
         None => Owner::Unknown,

@@ -21,6 +21,10 @@ pub struct GranuleIdentity {
     pub name: String,
     /// The footprint dimensions: name and length, in the file's order.
     pub footprints: Vec<(String, usize)>,
+    /// The bands by name: flags limited to bands that are together all of them are flags of the whole
+    /// footprint.
+    #[serde(default)]
+    pub bands: Vec<String>,
     /// The layout file and the lending files that it was read with, in words.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub read_with: Vec<String>,
@@ -30,6 +34,11 @@ impl GranuleIdentity {
     /// The beginning of the hash: enough to tell the granules of a campaign apart.
     pub fn short(&self) -> &str {
         self.hash.get(..12).unwrap_or(&self.hash)
+    }
+
+    /// How many footprints the granule has.
+    pub fn footprint_count(&self) -> usize {
+        self.footprints.iter().map(|(_, length)| length).product()
     }
 }
 
@@ -287,6 +296,7 @@ mod tests {
             size: 3,
             name: "lowen_001.nc".to_owned(),
             footprints: vec![("line".to_owned(), 3)],
+            bands: Vec::new(),
             read_with: Vec::new(),
         };
         let folder = campaign.ledger_folder(&granule).unwrap();

@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 
 use super::Decision;
 use super::ledger_line::{Header, write_decision, write_line};
-use crate::system::sync_folder;
+use crate::system::{make_folder, sync_folder};
 
 /// More files of one writer for one granule than any trouble makes.
 const MOST_FILES: u32 = 10_000;
@@ -20,7 +20,7 @@ pub(super) struct LedgerFile {
 impl LedgerFile {
     /// Creates `<name>.jsonl`, or `<name>.2.jsonl` and so on if that is taken, with its header.
     pub(super) fn create(folder: &Path, name: &str, header: &Header) -> io::Result<Self> {
-        std::fs::create_dir_all(folder)?;
+        make_folder(folder)?;
         let (file, path) = create_new(folder, name)?;
         let mut ledger = Self { file, path, kept: 0 };
         let line = write_line(header)?;

@@ -90,6 +90,20 @@ fn unreadable(error: &io::Error) -> String {
     format!("cannot be read: {error}; decisions in it do not count until it can")
 }
 
+/// As in `scan_line 14, position 13`.
+fn dimensions(granule: &GranuleIdentity) -> String {
+    let all = granule.footprints.iter().map(|(name, length)| format!("{name} {length}"));
+    all.collect::<Vec<_>>().join(", ")
+}
+
+/// As in ` (layout.toml …)`.
+fn read_with(granule: &GranuleIdentity) -> String {
+    match &granule.read_with[..] {
+        [] => " (without a layout file or lending files)".to_owned(),
+        files => format!(" ({})", files.join("; ")),
+    }
+}
+
 #[derive(Default)]
 struct Gathering {
     decisions: BTreeMap<DecisionId, Vec<Decision>>,
@@ -177,7 +191,9 @@ impl Gathering {
         };
         let parsed = line.text.map_err(|_| HeaderError::NoLedger).and_then(Header::parse);
         match parsed {
-            Ok(header) if header.granule.hash == granule.hash => return Ok(Some(header)),
+            Ok(header) if header.granule.hash == granule.hash => {
+                return Ok(self.in_this_order(path, &header, granule).then_some(header));
+            }
             Ok(_) => {
                 let what = "is about another granule; it does not count here";
                 self.problem(path, 1, what.to_owned(), Loss::Nothing);
@@ -199,6 +215,30 @@ impl Gathering {
             }
         }
         Ok(None)
+    }
+
+    /// Whether the ledger counts footprints as the granule does now. A layout file can give them other
+    /// dimensions, and then its numbers mean other footprints.
+    fn in_this_order(&mut self, path: &Path, header: &Header, granule: &GranuleIdentity) -> bool {
+        let then = &header.granule;
+        let fits = then.footprints == granule.footprints;
+        if !fits {
+            let what = format!(
+                "decides about footprints over {}, but the granule is read over {}: give the layout \
+                 file that it was made with{}",
+                dimensions(then),
+                dimensions(granule),
+                read_with(then)
+            );
+            self.problem(path, 1, what, Loss::File);
+        } else if then.read_with != granule.read_with {
+            let what = format!(
+                "was made with the granule read otherwise{}; its decisions count",
+                read_with(then)
+            );
+            self.problem(path, 1, what, Loss::Nothing);
+        }
+        fits
     }
 
     /// A writer that had to begin a new file writes again what was not known to be kept, and a

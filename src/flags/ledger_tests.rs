@@ -16,6 +16,7 @@ pub(super) fn granule() -> GranuleIdentity {
         size: 3,
         name: "lowen_001.nc".to_owned(),
         footprints: vec![("line".to_owned(), 4), ("position".to_owned(), 5)],
+        bands: Vec::new(),
         read_with: Vec::new(),
     }
 }
@@ -242,7 +243,7 @@ fn an_act_of_a_newer_version_is_kept_and_reported_by_the_fold() {
     let reading = fixture.read();
     assert_eq!(reading.problems, []);
     assert_eq!(reading.decisions.len(), 4);
-    let state = FlagState::replay(20, &reading.decisions, &Vocabulary::released());
+    let state = FlagState::replay(20, &[], &reading.decisions, &Vocabulary::released());
     assert_eq!(state.problems.len(), 1);
     assert!(state.problems[0].contains("act `tint`"), "{:?}", state.problems);
 }
@@ -316,7 +317,7 @@ fn a_decision_comes_after_those_its_writer_saw() {
     behind.close(PATIENCE).unwrap();
     assert!(second.order() > first.order());
     assert_eq!(second.clock, Some(time(0)));
-    let state = FlagState::replay(20, &fixture.read().decisions, &Vocabulary::released());
+    let state = FlagState::replay(20, &[], &fixture.read().decisions, &Vocabulary::released());
     assert_eq!(state.footprint_flags[0], 0);
 }
 
@@ -407,10 +408,33 @@ fn the_lines_in_the_document_are_a_ledger() {
     std::fs::create_dir_all(fixture.folder()).unwrap();
     let text = format!("{header}\n{}\n", example(2));
     std::fs::write(fixture.folder().join("example.jsonl"), text).unwrap();
-    let reading = fixture.read();
+    let dimensions = [("scan_line", 45), ("position", 30), ("detector", 9)];
+    let footprints = dimensions.map(|(name, length)| (name.to_owned(), length)).to_vec();
+    let of_document = GranuleIdentity { footprints, ..granule() };
+    let reading = read_ledgers(&fixture.campaign, &of_document);
     assert_eq!(reading.problems, []);
     let decision = &reading.decisions[0];
     assert_eq!((decision.person.as_str(), decision.id.sequence), ("anna", 1));
     assert_eq!(decision.act.footprints().unwrap().len(), 17);
     assert_eq!(decision.why.as_deref(), Some("edge of the deck"));
+}
+
+#[test]
+fn a_ledger_over_other_dimensions_does_not_count_and_one_read_otherwise_is_told() {
+    let fixture = Fixture::new();
+    let (path, text) = fixture.three_decisions();
+    let there = serde_json::to_string(&granule().footprints).unwrap();
+    assert!(text.contains(&there), "{there} in {text}");
+    let turned = text.replacen(&there, r#"[["position",4],["line",5]]"#, 1);
+    std::fs::write(&path, turned).unwrap();
+    let reading = fixture.read();
+    assert_eq!(reading.decisions, []);
+    assert_eq!(reading.problems[0].loss, Loss::File);
+    assert!(reading.problems[0].what.contains("position 4, line 5"), "{}", reading.problems[0]);
+    let otherwise =
+        text.replacen(r#""footprints""#, r#""read_with":["flip.toml"],"footprints""#, 1);
+    std::fs::write(&path, otherwise).unwrap();
+    let reading = fixture.read();
+    assert_eq!((reading.decisions.len(), reading.problems.len()), (3, 1));
+    assert!(reading.problems[0].what.contains("flip.toml"), "{}", reading.problems[0]);
 }

@@ -78,9 +78,13 @@ fn treatment(word: &str, vocabulary: &Vocabulary) -> Result<Treatment, String> {
         ["show"] => Ok(Treatment::Show),
         ["reject"] => Ok(Treatment::Reject { flag: USUAL_FLAG.to_owned() }),
         ["reject", "as", flag] => match vocabulary.by_name(flag) {
-            Some(kind) if kind.scope == Scope::Footprint => {
+            Some(kind) if kind.scope == Scope::Footprint && kind.excludes => {
                 Ok(Treatment::Reject { flag: (*flag).to_owned() })
             }
+            Some(kind) if kind.scope == Scope::Footprint => Err(format!(
+                "a footprint that carries {flag:?} can be used: take a flag that excludes, such as \
+                 {USUAL_FLAG}"
+            )),
             _ => Err(format!("there is no flag of footprints called {flag:?}")),
         },
         _ => Err(format!("{word:?} is none of reject, reject as FLAG, ignore, show")),
@@ -117,6 +121,8 @@ mod tests {
         assert!(word.starts_with("quality.scene.moon: \"rejct\" is none of reject"), "{word}");
         let flag = wrong("[quality.scene]\nmoon = 'reject as dead'\n");
         assert!(flag.contains("no flag of footprints called \"dead\""), "{flag}");
+        let mild = wrong("[quality.scene]\nmoon = 'reject as unusual'\n");
+        assert!(mild.contains("\"unusual\" can be used"), "{mild}");
         assert!(wrong("[quality]\nscene = 'reject'\n").contains("line 2"));
     }
 }

@@ -23,14 +23,23 @@ const MOST_BANDS: usize = 64;
 const MOST_CHANNELS: usize = 1 << 20;
 
 impl FlagState {
-    /// The flags of a granule with `footprints` footprints after all `decisions`, in any order.
+    /// The flags of a granule with `footprints` footprints and these `bands` after all `decisions`, in
+    /// any order.
     ///
     /// Rules: a person's word about a flag at a footprint stands against every test, whenever it
     /// was spoken; after a person has assessed a footprint, no later test changes it, and a test
     /// that takes back its own flag does not take it from under a person's assessment; a
-    /// withdrawal makes a footprint decided only where the flag stood.
-    pub fn replay(footprints: usize, decisions: &[Decision], vocabulary: &Vocabulary) -> Self {
-        Replay::of(footprints, decisions, vocabulary).state()
+    /// withdrawal makes a footprint decided only where the flag stood. A flag alone makes no footprint
+    /// assessed, only a person's that excludes it as a whole: whoever calls a footprint unusual, or
+    /// one of its bands bad, has not said that the rest can be used. Flags limited to bands that are
+    /// together all of the granule's are flags of the whole footprint.
+    pub fn replay(
+        footprints: usize,
+        bands: &[String],
+        decisions: &[Decision],
+        vocabulary: &Vocabulary,
+    ) -> Self {
+        Replay::of(footprints, bands, decisions, vocabulary).state()
     }
 }
 
@@ -44,10 +53,15 @@ pub struct Replay {
 
 impl Replay {
     /// Folds all decisions about a granule, in any order, by the rules of [`FlagState::replay`].
-    pub fn of(footprints: usize, decisions: &[Decision], vocabulary: &Vocabulary) -> Self {
+    pub fn of(
+        footprints: usize,
+        bands: &[String],
+        decisions: &[Decision],
+        vocabulary: &Vocabulary,
+    ) -> Self {
         let ordered = Ordered::new(decisions);
         let protected = protected_parts(footprints, &ordered);
-        let mut fold = Fold::new(footprints, vocabulary.clone());
+        let mut fold = Fold::new(footprints, bands.to_vec(), vocabulary.clone());
         for (at, decision) in ordered.decisions.iter().enumerate() {
             if ordered.standing[at] {
                 fold.apply(decision, None);
@@ -88,22 +102,28 @@ struct Fold {
     vocabulary: Vocabulary,
     whole: Plane,
     bands: BTreeMap<String, Plane>,
+    /// The names of all bands that the granule has.
+    all_bands: Vec<String>,
     review: Vec<ReviewState>,
     /// Footprints that a person assessed: later tests change nothing there.
     settled: Vec<bool>,
+    /// Footprints that a person gave a flag which says nothing about the rest of them.
+    heard: Vec<bool>,
     /// Flags, and about which of them persons spoke.
     channels: BTreeMap<String, BTreeMap<usize, (super::ChannelFlags, u32)>>,
     problems: BTreeMap<String, usize>,
 }
 
 impl Fold {
-    fn new(footprints: usize, vocabulary: Vocabulary) -> Self {
+    fn new(footprints: usize, all_bands: Vec<String>, vocabulary: Vocabulary) -> Self {
         Self {
             vocabulary,
+            all_bands,
             whole: Plane::new(footprints),
             bands: BTreeMap::new(),
             review: vec![ReviewState::NotAssessed; footprints],
             settled: vec![false; footprints],
+            heard: vec![false; footprints],
             channels: BTreeMap::new(),
             problems: BTreeMap::new(),
         }
@@ -175,7 +195,12 @@ impl Fold {
                 plane.flag(run.clone(), bit, (!person).then_some(settled));
             }
         }
-        self.reach(at, person);
+        let excludes = bands.is_none() && bit & self.vocabulary.excluding_mask() != 0;
+        if person && excludes {
+            self.reach(at, true);
+        } else if person {
+            at.runs().iter().for_each(|run| self.heard[run.clone()].fill(true));
+        }
     }
 
     fn withdraw(&mut self, bit: u32, at: &FootprintSet, bands: Option<&[String]>, person: bool) {
@@ -253,6 +278,29 @@ impl Fold {
         *self.problems.entry(clean_text(&what)).or_default() += 1;
     }
 
+    /// The flags of the whole footprint: those given to it, and those that stand in every band.
+    fn whole_flags(&self) -> Vec<u32> {
+        let mut flags = self.whole.flags.clone();
+        let planes: Option<Vec<&Plane>> =
+            self.all_bands.iter().map(|name| self.bands.get(name)).collect();
+        let Some(planes) = planes.filter(|planes| !planes.is_empty()) else { return flags };
+        for (at, flags) in flags.iter_mut().enumerate() {
+            *flags |= planes.iter().fold(u32::MAX, |all, plane| all & plane.flags[at]);
+        }
+        flags
+    }
+
+    /// Who has assessed the footprints. Whoever gave one a flag has decided about it, too, where
+    /// anything assessed it.
+    fn review_states(&self) -> Vec<ReviewState> {
+        let both = self.review.iter().zip(&self.heard);
+        let state = |(review, heard): (&ReviewState, &bool)| match (review, heard) {
+            (ReviewState::AssessedByTest, true) => ReviewState::DecidedByPerson,
+            _ => *review,
+        };
+        both.map(state).collect()
+    }
+
     fn state(&self, granule: GranuleState) -> FlagState {
         let flags_of =
             |(index, (flags, _)): (&usize, &(super::ChannelFlags, u32))| (*index, *flags);
@@ -266,9 +314,9 @@ impl Fold {
             format!("{what} ({times} {decisions}): kept in the ledger, not in the flags")
         });
         FlagState {
-            footprint_flags: self.whole.flags.clone(),
+            footprint_flags: self.whole_flags(),
             band_flags: bands.map(|(name, plane)| (name.clone(), plane.flags.clone())).collect(),
-            review: self.review.clone(),
+            review: self.review_states(),
             channel_flags: channels.collect(),
             granule,
             problems: problems.collect(),

@@ -40,7 +40,7 @@ impl Story {
     }
 
     fn state(&self) -> FlagState {
-        FlagState::replay(FOOTPRINTS, &self.decisions, &Vocabulary::released())
+        FlagState::replay(FOOTPRINTS, &[], &self.decisions, &Vocabulary::released())
     }
 }
 
@@ -130,11 +130,8 @@ fn a_person_beats_a_test_before_and_after() {
     story.test(withdraw("dust_or_ash", &[2]));
     let state = story.state();
     assert_eq!(state.footprint_flags[..4], [1, 0, 4, 1]);
-    use ReviewState::{AssessedByTest, DecidedByPerson};
-    assert_eq!(
-        state.review[..4],
-        [AssessedByTest, DecidedByPerson, DecidedByPerson, AssessedByTest]
-    );
+    use ReviewState::{DecidedByPerson, NotAssessed};
+    assert_eq!(state.review[..4], [NotAssessed, DecidedByPerson, DecidedByPerson, NotAssessed]);
 }
 
 #[test]
@@ -180,7 +177,7 @@ fn a_test_takes_back_its_own_and_never_a_persons() {
 fn the_rest_is_assessed_only_where_a_sign_off_says_so() {
     let mut story = Story::default();
     story.anna(flag("cloudy", &[0]));
-    let rest = story.state().rest();
+    let rest = story.state().rest(&Vocabulary::released());
     assert_eq!(rest, FootprintSet::range(1..FOOTPRINTS));
     let bare = story.anna(sign_off(&[]));
     assert_eq!(story.state().counts(&Vocabulary::released()).usable, 0);
@@ -190,6 +187,59 @@ fn the_rest_is_assessed_only_where_a_sign_off_says_so() {
     story.anna(Act::SignOff { rest_assessed: rest, summary: String::new() });
     let counts = story.state().counts(&Vocabulary::released());
     assert_eq!((counts.usable, counts.by_person), (FOOTPRINTS - 1, FOOTPRINTS));
+}
+
+#[test]
+fn a_flag_alone_makes_nothing_usable() {
+    let limited = |name: &str| Act::Flag {
+        flag: name.to_owned(),
+        footprints: set(&[4]),
+        bands: Some(vec!["short_wave".to_owned()]),
+    };
+    let mut story = Story::default();
+    story.test(flag("unusual", &[0]));
+    story.test(limited("bad_spectrum"));
+    story.anna(flag("surface_anomaly", &[1]));
+    story.anna(limited("bad_spectrum"));
+    story.anna(flag("cloudy", &[2]));
+    let state = story.state();
+    let usable = |state: &FlagState| state.counts(&Vocabulary::released()).usable;
+    use ReviewState::{AssessedByTest, DecidedByPerson, NotAssessed};
+    let expected = [NotAssessed, NotAssessed, DecidedByPerson, NotAssessed, NotAssessed];
+    assert_eq!(state.review[..5], expected);
+    assert_eq!(usable(&state), 0);
+    // Once tests have assessed them, before or after, they can be used.
+    story.test(assess(&[0, 1, 4]));
+    let state = story.state();
+    assert_eq!(state.review[..2], [AssessedByTest, DecidedByPerson]);
+    assert_eq!(state.review[4], DecidedByPerson);
+    assert_eq!(usable(&state), 3);
+}
+
+#[test]
+fn a_flag_in_every_band_is_one_of_the_whole_footprint() {
+    let mut story = Story::default();
+    let lost = |band: &str, footprints: &[usize]| Act::Flag {
+        flag: "bad_spectrum".to_owned(),
+        footprints: set(footprints),
+        bands: Some(vec![band.to_owned()]),
+    };
+    story.test(assess(&[0, 1, 2]));
+    story.test(lost("long_wave", &[0, 1]));
+    story.anna(lost("short_wave", &[1, 2]));
+    let bands = ["long_wave".to_owned(), "short_wave".to_owned()];
+    let vocabulary = Vocabulary::released();
+    let state = FlagState::replay(FOOTPRINTS, &bands, &story.decisions, &vocabulary);
+    assert_eq!(state.footprint_flags[..3], [0, 1 << 4, 0]);
+    assert!(state.usable(0, &vocabulary) && !state.usable(1, &vocabulary));
+    // With a third band, or where nobody knows the bands, one is left to be used.
+    let three = [&bands[..], &["middle".to_owned()]].concat();
+    for bands in [&three[..], &[]] {
+        let state = FlagState::replay(FOOTPRINTS, bands, &story.decisions, &vocabulary);
+        assert_eq!(state.footprint_flags[..3], [0, 0, 0]);
+    }
+    let one = FlagState::replay(FOOTPRINTS, &bands[..1], &story.decisions, &vocabulary);
+    assert_eq!(one.footprint_flags[..3], [1 << 4, 1 << 4, 0], "the only band");
 }
 
 #[test]
@@ -373,8 +423,8 @@ proptest! {
     ) {
         let vocabulary = Vocabulary::released();
         prop_assert_eq!(
-            FlagState::replay(FOOTPRINTS, &decisions, &vocabulary),
-            FlagState::replay(FOOTPRINTS, &shuffled, &vocabulary)
+            FlagState::replay(FOOTPRINTS, &[], &decisions, &vocabulary),
+            FlagState::replay(FOOTPRINTS, &[], &shuffled, &vocabulary)
         );
     }
 
@@ -414,15 +464,15 @@ proptest! {
             }
         }
         let (before, later) = decisions.split_at(first.min(decisions.len()));
-        let mut replay = Replay::of(FOOTPRINTS, before, &vocabulary);
+        let mut replay = Replay::of(FOOTPRINTS, &[], before, &vocabulary);
         for (count, decision) in later.iter().enumerate() {
             let all = &decisions[..=before.len() + count];
             let added = replay.add(decision);
             prop_assert_eq!(added, !matches!(decision.act, Act::Revoke { .. }));
             if !added {
-                replay = Replay::of(FOOTPRINTS, all, &vocabulary);
+                replay = Replay::of(FOOTPRINTS, &[], all, &vocabulary);
             }
-            prop_assert_eq!(replay.state(), FlagState::replay(FOOTPRINTS, all, &vocabulary));
+            prop_assert_eq!(replay.state(), FlagState::replay(FOOTPRINTS, &[], all, &vocabulary));
         }
     }
 

@@ -75,11 +75,13 @@ impl FlagState {
         in_bands.fold(whole, |all, flags| all | flags)
     }
 
-    /// The footprints that have neither a flag nor an assessment: what a sign-off may add as
-    /// looked at and usable.
-    pub fn rest(&self) -> FootprintSet {
-        let open =
-            |&at: &usize| self.review[at] == ReviewState::NotAssessed && self.any_flags(at) == 0;
+    /// The footprints that nothing has assessed and no flag of the whole footprint excludes: what a
+    /// sign-off may add as looked at and usable.
+    pub fn rest(&self, vocabulary: &Vocabulary) -> FootprintSet {
+        let excluding = vocabulary.excluding_mask();
+        let open = |&at: &usize| {
+            self.review[at] == ReviewState::NotAssessed && self.footprint_flags[at] & excluding == 0
+        };
         (0..self.review.len()).filter(open).collect()
     }
 

@@ -14,7 +14,7 @@ const UNEVEN: f64 = 0.01;
 pub fn hamming(band: &mut Band, problems: &mut Vec<Problem>) -> Option<Hamming3> {
     if let Some(reason) = reason_against(band) {
         let what = format!("not apodised as asked: {reason}");
-        problems.push(Problem::note(&what, &band.variable, "its values stay as in the file"));
+        problems.push(Problem::refused(&what, &band.variable, "its values stay as in the file"));
         return None;
     }
     let mean = Hamming3::new(&band.axis, |channel| !band.bad[channel]);

@@ -33,12 +33,12 @@ pub fn lenders(
         let Some(file) = pattern.file_for(path).map_err(refused)? else {
             let shown = pattern.path().to_string_lossy();
             let what = "there is no file that lends to this granule";
-            problems.push(Problem::missing(what, &shown, "its fields are missing"));
+            problems.push(Problem::refused(what, &shown, "its fields are missing"));
             continue;
         };
         if file.canonicalize().ok() == path.canonicalize().ok() {
             let shown = file.to_string_lossy();
-            problems.push(Problem::note("is the granule itself", &shown, "it lends nothing"));
+            problems.push(Problem::refused("is the granule itself", &shown, "it lends nothing"));
             continue;
         }
         let reader = FileReader::open(&how.program, &file, &how.limits)?;

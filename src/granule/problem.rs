@@ -13,6 +13,8 @@ pub enum ProblemKind {
     Guess,
     /// Something is odd, and how it was treated.
     Note,
+    /// What the user asked for could not be done.
+    Refused,
 }
 
 impl ProblemKind {
@@ -22,6 +24,7 @@ impl ProblemKind {
             Self::Missing => "missing",
             Self::Guess => "guess",
             Self::Note => "note",
+            Self::Refused => "not done",
         }
     }
 }
@@ -62,6 +65,13 @@ impl Problem {
     /// Something is odd.
     pub fn note(what: &str, where_: &str, advice: &str) -> Self {
         Self::new(ProblemKind::Note, what, where_, advice)
+    }
+}
+
+impl Problem {
+    /// What the user asked for could not be done with this file.
+    pub fn refused(what: &str, where_: &str, advice: &str) -> Self {
+        Self::new(ProblemKind::Refused, what, where_, advice)
     }
 }
 

@@ -43,9 +43,9 @@ impl Record {
         let LedgerReading { decisions, problems, .. } = read_ledgers(campaign, &identity);
         let mut writer = LedgerWriter::start(campaign, &identity, author, program, now)?;
         writer.saw(&decisions);
-        let footprints = identity.footprints.iter().map(|(_, length)| length).product();
+        let footprints = identity.footprint_count();
         let vocabulary = campaign.settings().vocabulary.clone();
-        let replay = Replay::of(footprints, &decisions, &vocabulary);
+        let replay = Replay::of(footprints, &identity.bands, &decisions, &vocabulary);
         let mut record = Record {
             identity,
             person: author.person.clone(),
@@ -98,7 +98,8 @@ impl Record {
 
     /// Folds all decisions anew.
     pub(super) fn fold(&mut self) {
-        self.replay = Replay::of(self.footprints, &self.decisions, &self.vocabulary);
+        self.replay =
+            Replay::of(self.footprints, &self.identity.bands, &self.decisions, &self.vocabulary);
         self.sum_up();
     }
 

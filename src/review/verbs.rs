@@ -158,16 +158,21 @@ impl Record {
         if self.state().granule == GranuleState::SignedOff {
             return Err(Refusal::Already(GranuleState::SignedOff.name()));
         }
-        let rest_assessed =
-            if rest_looked_at { self.state().rest() } else { FootprintSet::empty() };
+        let rest_assessed = if rest_looked_at {
+            self.state().rest(self.vocabulary())
+        } else {
+            FootprintSet::empty()
+        };
         let counts = self.counts();
+        // Those with a flag that excludes nothing are counted as flagged already.
+        let unflagged = rest_assessed.iter().filter(|at| self.state().any_flags(*at) == 0).count();
         let summary = format!(
             "{} footprints: {} flagged, {} no flag, {} not assessed; {} decided by persons, {} by \
              tests alone, {} in doubt",
             counts.footprints,
             counts.flagged,
-            counts.no_flag + rest_assessed.len(),
-            counts.not_assessed - rest_assessed.len().min(counts.not_assessed),
+            counts.no_flag + unflagged,
+            counts.not_assessed - unflagged.min(counts.not_assessed),
             counts.by_person + rest_assessed.len(),
             counts.by_test,
             counts.in_doubt

@@ -257,7 +257,10 @@ impl Screened {
             names.iter().map(|name| ((*name).to_owned(), count(name))).collect();
         let doubtful = all().filter(|at| self.is_doubtful(*at)).count();
         flagged.push(("doubtful".to_owned(), doubtful));
-        let plain = |at: &&usize| !names.iter().any(|name| self.is_flagged(name, **at));
+        // `doubtful` is a flag as the others are, also in masks and in the Tray.
+        let plain = |at: &&usize| {
+            !self.is_doubtful(**at) && !names.iter().any(|name| self.is_flagged(name, **at))
+        };
         let doubt: f64 = assessed.iter().map(|at| self.doubt[*at]).sum();
         Summary {
             footprints: self.footprints(),

@@ -22,4 +22,6 @@ pub use memory::free_memory;
 pub use near_names::near_names;
 pub use patient_file::{PatientFile, open_without_waiting, stamp_in_time};
 pub use unchanged::FileStamp;
-pub use whole_file::{WriteError, sync_folder, write_whole};
+pub use whole_file::{
+    Placing, WriteError, make_folder, place_whole, remove_unfinished, sync_folder, write_whole,
+};

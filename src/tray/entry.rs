@@ -4,8 +4,8 @@ use std::collections::BTreeSet;
 use std::path::{Path, PathBuf};
 
 use crate::flags::{
-    Counts, Decision, FlagState, GranuleState, OwnTimes, SpotCheck, Vocabulary, own_steps,
-    own_times, screened_by, spot_checks,
+    Counts, Decision, FlagState, GranuleIdentity, GranuleState, OwnTimes, SpotCheck, Vocabulary,
+    own_steps, own_times, screened_by, spot_checks,
 };
 use crate::system::clean_text;
 
@@ -42,14 +42,15 @@ pub struct Entry {
 }
 
 impl Standing {
-    /// What decisions about a granule of so many footprints amount to, for `person`.
+    /// What decisions about a granule amount to, for `person`.
     pub fn of(
-        footprints: usize,
+        granule: &GranuleIdentity,
         decisions: &[Decision],
         vocabulary: &Vocabulary,
         person: &str,
     ) -> Standing {
-        let state = FlagState::replay(footprints, decisions, vocabulary);
+        let footprints = granule.footprint_count();
+        let state = FlagState::replay(footprints, &granule.bands, decisions, vocabulary);
         let counts = state.counts(vocabulary);
         let screened = decisions.iter().any(|decision| !decision.by_person());
         Standing {

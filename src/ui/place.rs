@@ -77,6 +77,7 @@ mod tests {
             size: 1,
             name: "lowen.nc".to_owned(),
             footprints: vec![("line".to_owned(), 100)],
+            bands: Vec::new(),
             read_with: Vec::new(),
         };
         assert_eq!(read(&campaign, &granule, "ada"), None);

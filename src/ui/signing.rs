@@ -44,7 +44,7 @@ pub fn ask(app: &mut App) -> Vec<Job> {
 /// Takes the answer.
 pub fn answer(app: &mut App, key: Key) -> Vec<Job> {
     let Some((bench, record)) = on_table(app) else { return Vec::new() };
-    let open = record.counts().not_assessed > 0;
+    let open = !record.state().rest(record.vocabulary()).is_empty();
     let tested = left_to_tests(bench, record).0 > 0;
     match key.code {
         Code::Char('y' | 'Y') => sign_off(app, if open { Rest::LookedAt } else { Rest::Open }),
@@ -137,7 +137,7 @@ fn by_whom(record: &Record) -> String {
 }
 
 fn answers(bench: &Bench, record: &Record) -> Vec<String> {
-    let open = record.counts().not_assessed;
+    let open = record.state().rest(record.vocabulary()).len();
     if open == 0 {
         return vec!["Enter, y: sign off".to_owned(), "Esc: do not sign off".to_owned()];
     }

@@ -303,8 +303,7 @@ fn standing(path: &Path, outside: &Outside) -> Result<Standing, String> {
     let identity = review.identify().map_err(in_words)?;
     let decisions = read_ledgers(&outside.campaign, &identity).decisions;
     let vocabulary = &outside.campaign.settings().vocabulary;
-    let footprints = review.granule().footprints().count();
-    Ok(Standing::of(footprints, &decisions, vocabulary, &outside.author.person))
+    Ok(Standing::of(&identity, &decisions, vocabulary, &outside.author.person))
 }
 
 /// Signs a granule off, unless somebody has changed it meanwhile so that it is not within the limits
@@ -315,9 +314,8 @@ fn sign_off(path: &Path, outside: &Outside) -> Result<Standing, String> {
     let review = Review::open(&outside.opening, path).map_err(in_words)?;
     let (mut record, _) = record(&review, outside)?;
     let standing = |record: &Record| {
-        let footprints = review.granule().footprints().count();
         let vocabulary = &outside.campaign.settings().vocabulary;
-        Standing::of(footprints, record.decisions(), vocabulary, &outside.author.person)
+        Standing::of(record.identity(), record.decisions(), vocabulary, &outside.author.person)
     };
     if let Some(reason) = reason(&standing(&record), limits, &rulebook) {
         return Err(reason);

@@ -85,7 +85,7 @@ fn decided(
     let identity = review.identify().map_err(in_words)?;
     let decisions = read_ledgers(&outside.campaign, &identity).decisions;
     let vocabulary = &outside.campaign.settings().vocabulary;
-    let state = FlagState::replay(measured.footprints(), &decisions, vocabulary);
+    let state = FlagState::replay(measured.footprints(), &identity.bands, &decisions, vocabulary);
     let by_person = |at: &usize| state.review.get(*at) == Some(&ReviewState::DecidedByPerson);
     let all: Vec<usize> = (0..measured.footprints()).filter(by_person).collect();
     let step = all.len().div_ceil(MOST_DECIDED).max(1);
@@ -107,14 +107,13 @@ fn decide(
     let review = open(path, outside)?;
     let (mut record, _) = record(&review, outside)?;
     verb(&mut record).map_err(|refusal| refusal.to_string())?;
-    close(&review, *record, outside)
+    close(*record, outside)
 }
 
-fn close(review: &Review, record: Record, outside: &Outside) -> Result<Brought, String> {
-    let footprints = review.granule().footprints().count();
+fn close(record: Record, outside: &Outside) -> Result<Brought, String> {
     let vocabulary = &outside.campaign.settings().vocabulary;
     let person = &outside.author.person;
-    let standing = Standing::of(footprints, record.decisions(), vocabulary, person);
+    let standing = Standing::of(record.identity(), record.decisions(), vocabulary, person);
     record.close(PATIENCE).map_err(|error| error.to_string())?;
     Ok(Brought::Decided(Box::new(standing)))
 }
@@ -127,5 +126,5 @@ fn screen(path: &Path, cancel: &Cancel, outside: &Outside) -> Result<Brought, St
     let (mut record, _) = record(&review, outside)?;
     let decided = record.tests_decide(&screened, (outside.clock)());
     decided.map_err(|refusal| refusal.to_string())?;
-    close(&review, *record, outside)
+    close(*record, outside)
 }

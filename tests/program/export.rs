@@ -73,6 +73,7 @@ impl Desk {
         let campaign = Campaign::open_or_create(&self.campaign()).unwrap();
         let content = std::fs::read(granule).unwrap();
         let identity = GranuleIdentity {
+            bands: Vec::new(),
             hash: blake3::hash(&content).to_hex().to_string(),
             size: content.len() as u64,
             name: granule.file_name().unwrap().to_str().unwrap().to_owned(),

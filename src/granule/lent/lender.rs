@@ -85,7 +85,11 @@ impl Lender {
             reader,
         };
         if matched == 0 {
-            problems.push(Problem::note("no footprint has a place in it", "", "it lends nothing"));
+            problems.push(Problem::refused(
+                "no footprint has a place in it",
+                "",
+                "it lends nothing",
+            ));
         }
         Ok(lender)
     }

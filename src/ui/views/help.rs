@@ -69,7 +69,7 @@ fn warning(text: String) -> MessageRow {
 
 fn of_file(problem: &Problem) -> MessageRow {
     let tone = match problem.kind {
-        ProblemKind::Missing | ProblemKind::Guess => Tone::Warning,
+        ProblemKind::Missing | ProblemKind::Guess | ProblemKind::Refused => Tone::Warning,
         ProblemKind::Note => Tone::Plain,
     };
     let mut text = format!("{}: {}", problem.kind.label(), problem.what);
