@@ -58,7 +58,7 @@ fn saved(
     granule: &Granule,
     limits: &HealthLimits,
 ) -> Result<SavedBases, Box<dyn std::error::Error>> {
-    let rows = training_rows(granule, limits, 1200, &Cancel::new())?;
+    let rows = training_rows(granule, limits, &[], 1200, &Cancel::new())?;
     let bands = rows
         .into_iter()
         .filter_map(|(name, rows, noise)| Some((name, fit_together(&[(rows, noise)])?)));

@@ -132,7 +132,7 @@ impl Granule {
             let length = reader.index().dimensions[variable.dimensions[0]].length;
             let planted = reader.read(variable, &[0], &[length])?.to_f64();
             // `truth/channel_defects_longwave` belongs to `radiance_longwave`.
-            let ending = &variable.path[TRUTH.len()..];
+            let ending = variable.path[TRUTH.len()..].trim_start_matches('_');
             for (index, planted) in planted.into_iter().enumerate() {
                 let suspected = examined.of_channels().any(|finding| match finding.subject {
                     Subject::Channel(channel) => {

@@ -68,6 +68,8 @@ fn of_band(examined: &Examined, band: &BandHealth) -> Value {
             "noise_ratio": present(one.noise),
             "bias_K": present(one.bias),
             "bias_deviation_K": present(one.bias_deviation),
+            "uniform_bias_K": present(one.uniform_bias),
+            "uniform_bias_deviation_K": present(one.uniform_deviation),
         })
     });
     let shifts = band.shifts.iter().map(
@@ -137,6 +139,14 @@ pub fn write_spectrum_evidence(evidence: &Evidence, out: &mut dyn Write) -> io::
             Some(score) => {
                 let said = if one.unusual { "unusual" } else { "like the others" };
                 writeln!(out, "  {band}: {said}; score {score:.2} > {limit:.2} noises?")?;
+                let (mean, deviation) = (one.training_mean, one.training_deviation);
+                if let Some(deviations) = one.deviations {
+                    let (count, of) = (one.training_spectra, "training spectra");
+                    writeln!(
+                        out,
+                        "      {deviations:+.1} sigma: {count} {of} have {mean:.2} ± {deviation:.2}"
+                    )?;
+                }
                 writeln!(out, "      T20, {components} components from {basis}")?;
             }
         }

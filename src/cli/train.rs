@@ -9,7 +9,7 @@ use super::exit::UsageError;
 use super::inputs::{Inputs, Reading};
 use super::{Exit, surroundings};
 use crate::flags::Campaign;
-use crate::review::{basis_path, rulebook_of, write_bases};
+use crate::review::{Producer, basis_path, rulebook_of, write_bases};
 use crate::screening::health::training_rows;
 use crate::screening::unusual::{Rows, SavedBases, fit_together, instrument_shape};
 use crate::system::{Cancel, clean_text};
@@ -28,7 +28,7 @@ type BandRows = (String, Vec<(Rows, Vec<f64>)>);
     The principal components are kept in the campaign's folder, in one file for each instrument; \
     screen and review then hold spectra against them. Without them each granule is held against its \
     own, which cannot find what is common in it. Take granules of all seasons and places, other than \
-    those to be screened. What is unlike the others is left out.")]
+    those to be screened. What is unlike the others is left out, and so is what the producer rejects.")]
 pub struct Arguments {
     #[command(flatten)]
     inputs: Inputs,
@@ -52,6 +52,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let mut place: Option<(PathBuf, String)> = None;
     let mut granules = Vec::new();
     let mut bands: Vec<BandRows> = Vec::new();
+    let mut rejected = 0;
     for file in &files {
         let granule = opening.open(file)?;
         let shape = instrument_shape(&granule);
@@ -65,7 +66,14 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
             return Err(UsageError(what).into());
         }
         granule.fill(&Cancel::new(), &mut |_| {})?;
-        for (name, rows, noise) in training_rows(&granule, &limits, each, &Cancel::new())? {
+        // What the producer rejects is no example of a sound spectrum.
+        let producer = Producer::of(&granule, &campaign.settings().quality);
+        for problem in &producer.problems {
+            eprintln!("radsieve: {}: {problem}", clean_text(&file.display().to_string()));
+        }
+        rejected += producer.left_out.iter().filter(|left_out| **left_out).count();
+        let rows = training_rows(&granule, &limits, &producer.left_out, each, &Cancel::new())?;
+        for (name, rows, noise) in rows {
             match bands.iter_mut().find(|(band, _)| *band == name) {
                 Some((_, all)) => all.push((rows, noise)),
                 None => bands.push((name, vec![(rows, noise)])),
@@ -96,7 +104,13 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     if arguments.json {
         let file = path.display().to_string();
         let bands = bands.collect::<Vec<_>>();
-        writeln!(out, "{}", json!({ "schema": 1, "file": file, "bands": bands }))?;
+        let answer = json!({
+            "schema": 1,
+            "file": file,
+            "bands": bands,
+            "rejected_by_producer": rejected,
+        });
+        writeln!(out, "{answer}")?;
         return Ok(Exit::Done);
     }
     for (name, basis) in &bases.bands {
@@ -104,6 +118,9 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         let (components, spectra) = (basis.components(), scores.spectra);
         let left_out = scores.left_out;
         writeln!(out, "{name}: {components} components of {spectra} spectra, {left_out} left out")?;
+    }
+    if rejected > 0 {
+        writeln!(out, "{rejected} footprints that the producer rejects were not taken")?;
     }
     writeln!(out, "{}", clean_text(&path.display().to_string()))?;
     Ok(Exit::Done)

@@ -3,7 +3,7 @@
 use std::ops::Range;
 
 use super::band::{Band, Quantity};
-use super::decoder::Decoder;
+use super::decoder::{DecodeMany, Decoder};
 use crate::netcdf_files::{Samples, with_values};
 use crate::spectral::Hamming3;
 use crate::units::TemperatureUnit;
@@ -83,6 +83,14 @@ impl Conversion {
         }
     }
 
+    /// How radiances that are not to be apodised become numbers, many at once.
+    fn plainly(&self) -> Option<(DecodeMany, &[f64])> {
+        match (&self.apodise, &self.scale) {
+            (None, Scale::Factors(factors)) => Some((self.decoder.for_many()?, factors)),
+            _ => None,
+        }
+    }
+
     /// One spectrum, whose values begin at `begin`, behind what is in `out`.
     #[allow(clippy::unnecessary_cast)] // One of the types is f64 itself.
     pub fn decode_spectrum(&self, samples: &Samples, begin: usize, out: &mut Vec<f64>) {
@@ -91,8 +99,15 @@ impl Conversion {
             samples,
             values => {
                 let spectrum = &values[begin..begin + self.channels];
-                let stored = |channel: usize| spectrum[channel] as f64;
-                out.extend((0..self.channels).map(|channel| self.value(channel, stored)));
+                match self.plainly() {
+                    Some((decode, factors)) => out.extend(
+                        spectrum.iter().zip(factors).map(|(v, f)| decode.decode(*v as f64) * f),
+                    ),
+                    None => {
+                        let stored = |channel: usize| spectrum[channel] as f64;
+                        out.extend((0..self.channels).map(|channel| self.value(channel, stored)));
+                    }
+                }
             },
             _strings => out.resize(self.channels, f64::NAN)
         );
@@ -114,6 +129,7 @@ impl Conversion {
             samples,
             values => {
                 let spectra = &values[first * self.channels..];
+                let plainly = self.plainly();
                 for start in (0..place.len()).step_by(SIDE_BY_SIDE) {
                     let some = start..(start + SIDE_BY_SIDE).min(place.len());
                     for (row, &channel) in channels.iter().enumerate() {
@@ -121,7 +137,12 @@ impl Conversion {
                         let out = &mut out[begin + some.start..begin + some.end];
                         for (out, at) in out.iter_mut().zip(some.clone()) {
                             let spectrum = &spectra[at * self.channels..][..self.channels];
-                            *out = self.value(channel, |channel| spectrum[channel] as f64);
+                            *out = match plainly {
+                                Some((decode, factors)) => {
+                                    decode.decode(spectrum[channel] as f64) * factors[channel]
+                                }
+                                None => self.value(channel, |channel| spectrum[channel] as f64),
+                            };
                         }
                     }
                 }

@@ -26,6 +26,7 @@ pub struct Review {
     producer: Producer,
     heights: Arc<CloudHeight>,
     bases: Option<SavedBases>,
+    bases_problem: Option<String>,
 }
 
 impl Review {
@@ -49,6 +50,7 @@ impl Review {
             producer,
             heights: Arc::default(),
             bases: None,
+            bases_problem: None,
         }
     }
 
@@ -69,6 +71,19 @@ impl Review {
     pub fn knowing(mut self, bases: Option<SavedBases>) -> Review {
         self.bases = bases;
         self
+    }
+
+    /// The same, without the components that a campaign has, for they can't be read: spectra are held
+    /// against the granule's own.
+    pub fn lacking_bases(mut self, why: &str) -> Review {
+        let what = "spectra are held against the granule's own components";
+        self.bases_problem = Some(format!("{what}: {why}"));
+        self
+    }
+
+    /// Why the campaign's components are not used although there are some.
+    pub fn bases_problem(&self) -> Option<&str> {
+        self.bases_problem.as_deref()
     }
 
     /// What the producer says of the footprints' quality.

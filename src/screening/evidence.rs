@@ -67,6 +67,14 @@ pub struct Reconstruction {
     pub components: usize,
     /// Where they come from: `own` or a file.
     pub basis: String,
+    /// How many spectra they were found in.
+    pub training_spectra: usize,
+    /// Mean score of those, noise units.
+    pub training_mean: f64,
+    /// Standard deviation of their scores, noise units.
+    pub training_deviation: f64,
+    /// How many of these deviations the score lies above the mean; `None` without a score.
+    pub deviations: Option<f64>,
     /// Where it is unusual, the channels that make it so: wavenumber (cm-1) and what is not explained
     /// in noise units.
     pub channels: Vec<(f64, f64)>,
@@ -204,13 +212,19 @@ fn health(examined: &Examined, footprint: usize) -> Vec<HealthEvidence> {
 fn rebuilt(examined: &Examined, footprint: usize) -> Vec<Reconstruction> {
     let bands = examined.bands.iter().filter_map(|band| {
         let unusual = examined.unusual_of(footprint).find(|one| one.band == band.band);
+        let basis = band.basis.as_ref()?;
+        let (scores, score) = (basis.scores, band.scores[footprint]);
         Some(Reconstruction {
             band: examined.band_name(band.band).to_owned(),
-            score: present(band.scores[footprint]),
+            score: present(score),
             limit: band.limit,
             unusual: unusual.is_some(),
-            components: band.basis.as_ref()?.components(),
+            components: basis.components(),
             basis: band.origin.name().to_owned(),
+            training_spectra: scores.spectra,
+            training_mean: scores.mean,
+            training_deviation: scores.deviation,
+            deviations: present((score - scores.mean) / scores.deviation),
             channels: unusual.map(|one| one.channels.clone()).unwrap_or_default(),
         })
     });

@@ -5,6 +5,8 @@ use std::f64::consts::PI;
 /// Channels of one window: long enough to be narrow in frequency, short enough that ringing at a
 /// band's edge fills it.
 const WINDOW: usize = 24;
+/// Sums that grow side by side; a part of a window's length.
+const LANES: usize = 8;
 /// Fewer windows say nothing about the power.
 const FEWEST: usize = 3;
 /// Deviations of the power of noise alone that a small number of windows must exceed: below this, a
@@ -51,8 +53,28 @@ impl RingingWindows {
     /// The ringing of a residual in noise units, channel by channel; missing channels count as
     /// nothing.
     pub fn of(&self, residual: impl Fn(usize) -> f64) -> Ringing {
-        let squares: f64 =
-            self.first.iter().map(|first| self.alternating(*first, &residual).powi(2)).sum();
+        self.from_squares(
+            self.first.iter().map(|first| self.alternating(*first, &residual).powi(2)),
+        )
+    }
+
+    /// The same of a residual without gaps, faster.
+    pub fn of_whole(&self, residual: &[f32]) -> Ringing {
+        self.from_squares(self.first.iter().map(|first| {
+            let window = &residual[*first..first + WINDOW];
+            let mut sums = [0.0_f64; LANES];
+            let lanes = self.weights.chunks_exact(LANES).zip(window.chunks_exact(LANES));
+            for (weights, values) in lanes {
+                for ((sum, weight), value) in sums.iter_mut().zip(weights).zip(values) {
+                    *sum += weight * f64::from(*value);
+                }
+            }
+            sums.iter().sum::<f64>().powi(2)
+        }))
+    }
+
+    fn from_squares(&self, squares: impl Iterator<Item = f64>) -> Ringing {
+        let squares: f64 = squares.sum();
         let mean = squares / self.first.len() as f64;
         let sum: f64 = self.weights.iter().map(|weight| weight.abs()).sum();
         let power: f64 = self.weights.iter().map(|weight| weight.powi(2)).sum();
@@ -112,6 +134,17 @@ mod tests {
         let found = windows.of(|at| apodised[at]).power;
         // The window is not infinitely narrow, and the power rises steeply from its minimum.
         assert!(found > 0.8 * expected && found < 2.5 * expected, "{found} {expected}");
+    }
+
+    #[test]
+    fn a_whole_residual_rings_as_one_value_after_the_other_says() {
+        let windows = RingingWindows::over(&[true; 240]).unwrap();
+        let white: Vec<f32> = noise(240, 5).iter().map(|value| *value as f32).collect();
+        let one = windows.of(|at| f64::from(white[at]));
+        let other = windows.of_whole(&white);
+        // Sums in another order: a few roundings of f64.
+        assert!((one.power / other.power - 1.0).abs() < 1e-12, "{one:?} {other:?}");
+        assert!((one.amplitude / other.amplitude - 1.0).abs() < 1e-12);
     }
 
     #[test]

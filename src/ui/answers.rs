@@ -120,10 +120,12 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
         Job::Quality { request: quality, review: Arc::clone(&bench.review) },
     ];
     let problems = bench.review.granule().problems().len();
+    let bases = bench.review.bases_problem().map(crate::system::clean_text);
     app.table = Table::Bench(Box::new(bench));
     match problems {
         // Why files before this one were passed over has to stay to be read.
         _ if app.message.1 == Tone::Bad => {}
+        _ if bases.is_some() => app.warn(bases.unwrap_or_default()),
         _ if app.welcome.is_some() => {
             let welcome = app.welcome.take().unwrap_or_default();
             app.say(welcome);

@@ -72,9 +72,10 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = found.map(|review| {
                 let review = review.heeding(&outside.campaign.settings().quality);
                 let folder = outside.campaign.folder();
-                // Without saved components spectra are held against the granule's own, and it says so.
-                let bases = read_bases(folder, review.granule(), &outside.opening);
-                review.knowing(bases.unwrap_or_default())
+                match read_bases(folder, review.granule(), &outside.opening) {
+                    Ok(bases) => review.knowing(bases),
+                    Err(error) => review.lacking_bases(&error.to_string()),
+                }
             });
             let found = found.map(Arc::new).map_err(in_words);
             send(Answer::Opened { request: *request, found });

@@ -1,7 +1,7 @@
 //! One band from its sample to its findings.
 
 use super::channels::{channel_noise, noisy_channels, popping_channels};
-use super::detectors::{Window, detectors, sweep, sweep_difference};
+use super::detectors::{DetectorChannels, detectors, sweep, sweep_difference};
 use super::examined::{BandHealth, BasisOrigin, UnusualSpectrum};
 use super::finding::{Check, Finding, Limit, Subject};
 use super::grid::ScanGrid;
@@ -77,7 +77,7 @@ impl<'g> BandWork<'g> {
             basis,
             spike_scale: spike_scale(&sample, fitted.as_ref(), &findings),
             excused: &sample.excused,
-            window: &Window::of(&readings, &sample),
+            compared: &DetectorChannels::of(&readings, &sample),
             lines: lines.as_ref(),
             spike: limits.spike,
             unusual: limit,
@@ -85,11 +85,14 @@ impl<'g> BandWork<'g> {
         let (spectra, sums) = check.all(grid);
         let shifts = lines.as_ref().map_or(Vec::new(), |lines| detector_shifts(lines, &sums));
         findings.extend(shifted_detectors(&readings, &shifts, limits));
-        let signal: Vec<f64> = spectra.iter().map(|spectrum| spectrum.window).collect();
+        let signals = [
+            spectra.iter().map(|spectrum| spectrum.window).collect::<Vec<f64>>(),
+            spectra.iter().map(|spectrum| spectrum.uniform).collect(),
+        ];
         let (of_detectors, found) =
-            detectors(&readings, &sample, fitted.as_ref(), &signal, grid, limits);
+            detectors(&readings, &sample, fitted.as_ref(), &signals, grid, limits);
         findings.extend(found);
-        findings.extend(sweep(&readings, &signal, grid, limits));
+        findings.extend(sweep(&readings, &signals[0], grid, limits));
         let windows_limit = check.ringing_limit(limits.ringing);
         let nyquist = fitted.as_ref().map_or(f64::NAN, |one| one.shape.power(std::f64::consts::PI));
         let health = BandHealth {
@@ -100,7 +103,7 @@ impl<'g> BandWork<'g> {
             noise,
             has_nedn: nedn.is_some(),
             detectors: of_detectors,
-            sweep: sweep_difference(&signal, grid),
+            sweep: sweep_difference(&signals[0], grid),
             shifts,
             basis: fitted.map(|fitted| fitted.basis),
         };
@@ -197,7 +200,7 @@ fn largest(basis: &Basis, residual: &[f64]) -> Vec<(f64, f64)> {
 
 /// What residuals are multiplied with to be in units of a channel's own noise, 0 for channels that
 /// are known to be faulty.
-fn spike_scale(sample: &Sample, fitted: Option<&Fitted>, findings: &[Finding]) -> Vec<f64> {
+fn spike_scale(sample: &Sample, fitted: Option<&Fitted>, findings: &[Finding]) -> Vec<f32> {
     let Some(fitted) = fitted else { return Vec::new() };
     let faulty: Vec<usize> = findings
         .iter()
@@ -210,7 +213,7 @@ fn spike_scale(sample: &Sample, fitted: Option<&Fitted>, findings: &[Finding]) -
     let basis = fitted.basis.channels.iter().zip(&fitted.basis.noise);
     basis
         .map(|(channel, noise)| match own(channel) {
-            Some(at) if !faulty.contains(channel) => noise / fitted.noise[at],
+            Some(at) if !faulty.contains(channel) => (noise / fitted.noise[at]) as f32,
             _ => 0.0,
         })
         .collect()

@@ -7,13 +7,11 @@ use super::grid::ScanGrid;
 use super::limits::HealthLimits;
 use super::readings::BandReadings;
 use super::sample::Sample;
-use crate::screening::unusual::Fitted;
-use crate::spectral::{
-    brightness_temperature_or_nan, centre_and_deviation, deviation_from_zero, median, planck_slope,
-};
+use crate::screening::unusual::{Fitted, pair_deviations};
+use crate::spectral::{brightness_temperature_or_nan, centre_and_deviation, median, planck_slope};
 
-/// At most so many channels make the window of a band: enough that their noise is averaged out.
-const WINDOW_CHANNELS: usize = 16;
+/// At most so many channels are looked at together: enough that their noise is averaged out.
+const TOGETHER: usize = 16;
 /// Positions that count as uniform: this share, with the smallest differences.
 const UNIFORM: f64 = 0.5;
 /// Fewer positions say nothing about a detector.
@@ -30,35 +28,60 @@ pub struct DetectorNumbers {
     pub bias: f64,
     /// Standard deviation of the bias, K.
     pub bias_deviation: f64,
+    /// The same in the channels that vary the least over the granule.
+    pub uniform_bias: f64,
+    /// Standard deviation of that, K.
+    pub uniform_deviation: f64,
 }
 
-/// The channels in which a band sees deepest, and how their radiances become temperature.
+/// Some channels of a band, and how their radiances become temperature.
 #[derive(Debug, Clone)]
-pub struct Window {
+pub struct ChannelGroup {
     /// Channel, its mean radiance, kelvin per radiance.
     weights: Vec<(usize, f64, f64)>,
 }
 
-impl Window {
-    /// That of a band: the channels that are the warmest on average.
+/// What detectors are compared in. Clouds make a window uneven, and then it says little about a
+/// detector; channels that see only high air are even nearly everywhere.
+#[derive(Debug, Clone)]
+pub struct DetectorChannels {
+    /// The channels that are the warmest on average: where the band sees deepest.
+    pub window: ChannelGroup,
+    /// The channels whose temperature varies the least over the granule, noise included.
+    pub uniform: ChannelGroup,
+}
+
+impl DetectorChannels {
+    /// Those of a band.
     pub fn of(readings: &BandReadings<'_>, sample: &Sample) -> Self {
         let rows = &sample.rows;
         let count = rows.count() as f64;
-        let means = (0..rows.channels.len()).map(|at| rows.column(at).sum::<f64>() / count);
-        let mut warmest: Vec<(f64, usize, f64)> = means
-            .zip(rows.wavenumbers.iter().zip(&rows.channels))
-            .map(|(mean, (nu, channel))| (brightness_temperature_or_nan(*nu, mean), *channel, mean))
-            .filter(|one| one.0.is_finite())
+        let mut channels: Vec<(usize, f64, f64, f64)> = (0..rows.channels.len())
+            .into_par_iter()
+            .map(|at| {
+                let mean = rows.column(at).sum::<f64>() / count;
+                let kelvin = brightness_temperature_or_nan(rows.wavenumbers[at], mean);
+                let spread = rows.column(at).map(|value| (value - mean).abs()).sum::<f64>() / count;
+                let spread = spread / planck_slope(rows.wavenumbers[at], kelvin);
+                (rows.channels[at], mean, kelvin, spread)
+            })
+            .filter(|one| one.2.is_finite() && one.3.is_finite())
             .collect();
-        warmest.sort_by(|one, next| next.0.total_cmp(&one.0));
-        warmest.truncate(WINDOW_CHANNELS);
-        let weight = |(kelvin, channel, mean): (f64, usize, f64)| {
-            let nu = readings.band.axis.wavenumbers()[channel];
-            (channel, mean, 1.0 / planck_slope(nu, kelvin))
+        let group = |channels: &[(usize, f64, f64, f64)]| {
+            let weight = |(channel, mean, kelvin, _): &(usize, f64, f64, f64)| {
+                let nu = readings.band.axis.wavenumbers()[*channel];
+                (*channel, *mean, 1.0 / planck_slope(nu, *kelvin))
+            };
+            ChannelGroup { weights: channels.iter().take(TOGETHER).map(weight).collect() }
         };
-        Self { weights: warmest.into_iter().map(weight).collect() }
+        channels.sort_by(|one, next| next.2.total_cmp(&one.2));
+        let window = group(&channels);
+        channels.sort_by(|one, next| one.3.total_cmp(&next.3));
+        Self { window, uniform: group(&channels) }
     }
+}
 
+impl ChannelGroup {
     /// What a spectrum is warmer by than the mean of the sample, K; NaN where a value is missing.
     pub fn signal(&self, radiances: &[f64]) -> f64 {
         let kelvin = self.weights.iter();
@@ -67,12 +90,13 @@ impl Window {
     }
 }
 
-/// The detectors in numbers, and what is wrong with them.
+/// The detectors in numbers, and what is wrong with them. `signals`: those of all footprints in the
+/// window, then in the uniform channels.
 pub fn detectors(
     readings: &BandReadings<'_>,
     sample: &Sample,
     fitted: Option<&Fitted>,
-    signal: &[f64],
+    signals: &[Vec<f64>; 2],
     grid: &ScanGrid,
     limits: &HealthLimits,
 ) -> (Vec<DetectorNumbers>, Vec<Finding>) {
@@ -85,23 +109,41 @@ pub fn detectors(
         Some(fitted) => noise_ratios(sample, fitted, grid),
         None => vec![f64::NAN; grid.detectors],
     };
-    let biases = biases(signal, &alive, grid);
+    let [in_window, in_uniform] = signals.each_ref().map(|signal| biases(signal, &alive, grid));
     let (noisy, striped) = (Limit::of(limits, "noisy_detector"), Limit::of(limits, "striping"));
     let mut numbers = Vec::new();
     let mut findings = Vec::new();
     for detector in 0..grid.detectors {
         let (subject, band) = (Subject::Detector(detector), Some(readings.number));
-        let (bias, deviation) = biases[detector];
-        numbers.push(DetectorNumbers { noise: noise[detector], bias, bias_deviation: deviation });
+        let ((bias, bias_deviation), (uniform_bias, uniform_deviation)) =
+            (in_window[detector], in_uniform[detector]);
+        let noise = noise[detector];
+        numbers.push(DetectorNumbers {
+            noise,
+            bias,
+            bias_deviation,
+            uniform_bias,
+            uniform_deviation,
+        });
         if !alive.contains(&detector) {
             continue;
         }
-        if noise[detector] > noisy.value {
-            findings.push(noisy.finding(Check::NoisyDetector, subject, band, noise[detector]));
+        if noise > noisy.value {
+            findings.push(noisy.finding(Check::NoisyDetector, subject, band, noise));
         }
-        if bias.abs() > striped.value && bias.abs() > SURE * deviation {
+        let biased = [
+            (bias, bias_deviation, "in the band's windows"),
+            (uniform_bias, uniform_deviation, "in the channels that vary the least"),
+        ];
+        // Where both show it, the surer one is told.
+        let sure = |(bias, deviation, _): &(f64, f64, &str)| (bias / deviation).abs();
+        let beyond =
+            biased.into_iter().filter(|one| one.0.abs() > striped.value && sure(one) > SURE);
+        if let Some((bias, deviation, place)) =
+            beyond.max_by(|one, next| sure(one).total_cmp(&sure(next)))
+        {
             let finding = striped.finding(Check::Striping, subject, band, bias);
-            findings.push(finding.saying(format!("± {deviation:.3} K in the band's windows")));
+            findings.push(finding.saying(format!("± {deviation:.3} K {place}")));
         }
     }
     (numbers, findings)
@@ -111,18 +153,10 @@ pub fn detectors(
 fn noise_ratios(sample: &Sample, fitted: &Fitted, grid: &ScanGrid) -> Vec<f64> {
     let width = sample.rows.channels.len();
     let of_detector = |detector: usize| {
-        let pairs: Vec<&(usize, usize)> = (sample.rows.pairs.iter())
-            .filter(|(row, _)| grid.detector(sample.footprints[*row]) == detector)
-            .collect();
-        let channels = (0..width).into_par_iter();
-        let mut deviations: Vec<f64> = channels
-            .map(|channel| {
-                let at = |row: usize| fitted.residuals[row * width + channel];
-                let differences = pairs.iter().map(|(one, other)| at(*one) - at(*other));
-                deviation_from_zero(&mut differences.collect::<Vec<_>>())
-            })
-            .filter(|deviation| deviation.is_finite())
-            .collect();
+        let own = |(row, _): &&(usize, usize)| grid.detector(sample.footprints[*row]) == detector;
+        let pairs: Vec<(usize, usize)> = sample.rows.pairs.iter().filter(own).copied().collect();
+        let mut deviations = pair_deviations(&fitted.residuals, width, &pairs);
+        deviations.retain(|deviation| deviation.is_finite());
         median(&mut deviations)
     };
     let deviations: Vec<f64> = (0..grid.detectors).map(of_detector).collect();

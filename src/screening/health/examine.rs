@@ -34,17 +34,19 @@ pub fn examine(
 }
 
 /// The first spectra of each band, about `most`, that components can be found in, with the first guess
-/// of their noise, by the name of the band.
+/// of their noise, by the name of the band. Footprints that are `left_out` are not among them; none is
+/// where it is empty.
 ///
 /// # Errors
 /// The file can't be read, or `cancel` was asked for.
 pub fn training_rows(
     granule: &Granule,
     limits: &HealthLimits,
+    left_out: &[bool],
     most: usize,
     cancel: &Cancel,
 ) -> Result<Vec<(String, Rows, Vec<f64>)>, GranuleError> {
-    let spectra = Spectra::new(granule, &[], cancel);
+    let spectra = Spectra::new(granule, left_out, cancel);
     let grid = ScanGrid::of(granule.footprints());
     let rows = granule.at_work(|| {
         let take = |readings: BandReadings<'_>| {

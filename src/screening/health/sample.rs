@@ -8,8 +8,8 @@ use super::grid::ScanGrid;
 use super::limits::HealthLimits;
 use super::readings::BandReadings;
 use crate::granule::Channel;
-use crate::screening::unusual::Rows;
-use crate::spectral::{deviation_from_zero, median, planck, running_median};
+use crate::screening::unusual::{Rows, pair_deviations};
+use crate::spectral::{median, planck, running_median};
 
 /// Spectra in the sample: enough that the noise of a channel is known to 4 %.
 pub const SAMPLE: usize = 1200;
@@ -50,6 +50,28 @@ struct Raw {
     footprints: Vec<usize>,
     channels: Vec<usize>,
     values: Vec<Vec<f64>>,
+    /// The same, all footprints of the first channel, then of the next.
+    columns: Vec<f64>,
+}
+
+/// Channels that are turned into columns together.
+const SIDE_BY_SIDE: usize = 16;
+
+/// Columns of rows: all of the first channel, then of the next.
+fn columns(rows: &[Vec<f64>], channels: usize) -> Vec<f64> {
+    let count = rows.len();
+    let mut columns = vec![0.0; count * channels];
+    if count == 0 {
+        return columns;
+    }
+    columns.par_chunks_mut(count * SIDE_BY_SIDE).enumerate().for_each(|(block, columns)| {
+        let first = block * SIDE_BY_SIDE;
+        for (row, values) in rows.iter().enumerate() {
+            let values = &values[first..(first + SIDE_BY_SIDE).min(channels)];
+            values.iter().enumerate().for_each(|(at, value)| columns[at * count + row] = *value);
+        }
+    });
+    columns
 }
 
 impl Sample {
@@ -67,7 +89,9 @@ impl Sample {
             readings.radiances(*footprint, buffer);
             channels.iter().map(|channel| buffer[*channel]).collect()
         });
-        let raw = Raw { values: values.collect(), footprints, channels };
+        let values: Vec<Vec<f64>> = values.collect();
+        let columns = columns(&values, channels.len());
+        let raw = Raw { values, columns, footprints, channels };
         let (dead_detectors, mut findings) = raw.dead_detectors(readings, grid, limits);
         let alive = |at: usize| {
             let there = raw.values[at].iter().filter(|value| value.is_finite()).count();
@@ -109,7 +133,8 @@ struct ChannelState {
 
 impl Raw {
     fn column(&self, channel: usize, among: &[usize]) -> Vec<f64> {
-        let values = among.iter().map(|at| self.values[*at][channel]);
+        let column = &self.columns[channel * self.footprints.len()..];
+        let values = among.iter().map(|at| column[*at]);
         values.filter(|value| value.is_finite()).collect()
     }
 
@@ -264,14 +289,8 @@ fn spatial_noise(rows: &Rows, spreads: &[f64]) -> Vec<f64> {
     pairs.sort_by(|one, next| one.0.total_cmp(&next.0));
     let wanted = ((ALIKE * pairs.len() as f64) as usize).max(FEWEST_ALIKE);
     pairs.truncate(wanted);
-    let noise: Vec<f64> = (0..width)
-        .into_par_iter()
-        .map(|channel| {
-            let mut differences: Vec<f64> =
-                pairs.iter().map(|(_, pair)| difference(pair, channel)).collect();
-            deviation_from_zero(&mut differences) / std::f64::consts::SQRT_2
-        })
-        .collect();
+    let pairs: Vec<(usize, usize)> = pairs.into_iter().map(|(_, pair)| *pair).collect();
+    let noise = pair_deviations(&rows.radiances, width, &pairs);
     // Where packing is coarser than noise, most pairs do not differ at all.
     let usual = running_median(&noise, REACH);
     let least =

@@ -2,7 +2,7 @@
 
 use rayon::prelude::*;
 
-use super::detectors::Window;
+use super::detectors::DetectorChannels;
 use super::grid::ScanGrid;
 use super::readings::BandReadings;
 use super::shift::{LineSums, Lines};
@@ -24,11 +24,11 @@ pub struct SpectraCheck<'c> {
     pub basis: Option<&'c Basis>,
     /// For each channel of the basis what its residual is multiplied with to be in units of its
     /// noise; 0 where no spikes are looked for.
-    pub spike_scale: Vec<f64>,
+    pub spike_scale: Vec<f32>,
     /// Channels of the band that may be missing without being missed.
     pub excused: &'c [bool],
-    /// Where the band sees deepest.
-    pub window: &'c Window,
+    /// What detectors are compared in.
+    pub compared: &'c DetectorChannels,
     /// Lines that show a spectral shift, if the band has some.
     pub lines: Option<&'c Lines>,
     /// Limits of a spike and of the score.
@@ -52,8 +52,18 @@ pub struct SpectrumReading {
     pub spikes: Vec<(usize, f64)>,
     /// What the band's windows are warmer by than the mean of the sample, K; NaN where missing.
     pub window: f64,
+    /// The same of the channels that vary the least.
+    pub uniform: f64,
     /// The same for spectra that are the same; 0 for those with hardly a value.
     pub key: u64,
+}
+
+/// Room for one line, used again for the next.
+#[derive(Default)]
+struct Buffers {
+    radiances: Vec<f64>,
+    /// Residuals of whole spectra, one behind the other.
+    block: Vec<f32>,
 }
 
 impl SpectraCheck<'_> {
@@ -70,8 +80,8 @@ impl SpectraCheck<'_> {
         let windows = self.basis.and_then(|basis| RingingWindows::over(&basis.adjacent));
         let expected = self.excused.iter().filter(|excused| !**excused).count();
         let lines = (0..grid.lines).into_par_iter();
-        let readings = lines.map_init(Vec::new, |buffer, line| {
-            self.line(grid, line, expected, many.as_ref(), windows.as_ref(), buffer)
+        let readings = lines.map_init(Buffers::default, |buffers, line| {
+            self.line(grid, line, expected, many.as_ref(), windows.as_ref(), buffers)
         });
         let (readings, sums): (Vec<_>, Vec<_>) = readings.unzip();
         (readings.into_iter().flatten().collect(), sums)
@@ -84,11 +94,11 @@ impl SpectraCheck<'_> {
         expected: usize,
         many: Option<&ManyResiduals<'_>>,
         windows: Option<&RingingWindows>,
-        buffer: &mut Vec<f64>,
+        Buffers { radiances: buffer, block }: &mut Buffers,
     ) -> (Vec<SpectrumReading>, LineSums) {
         let width = self.basis.map_or(0, |basis| basis.channels.len());
         let first = line * grid.row_length();
-        let mut block = vec![0.0_f32; grid.row_length() * width];
+        block.resize(grid.row_length() * width, 0.0);
         let mut readings = Vec::with_capacity(grid.row_length());
         // Spectra of which something is missing go the slow way.
         let mut whole = Vec::with_capacity(grid.row_length());
@@ -109,8 +119,8 @@ impl SpectraCheck<'_> {
             readings.push(reading);
         }
         if let (Some(many), Some(basis)) = (many, self.basis) {
-            block.truncate(whole.len() * width);
-            many.unexplained(&mut block);
+            let block = &mut block[..whole.len() * width];
+            many.unexplained(block);
             for (offset, rest) in whole.into_iter().zip(block.chunks_exact(width)) {
                 if self.looks_plain(rest, windows, &mut readings[offset]) {
                     continue;
@@ -147,7 +157,8 @@ impl SpectraCheck<'_> {
     /// What needs no components.
     fn plain(&self, radiances: &[f64], expected: usize) -> SpectrumReading {
         let (mut missing, mut stretch, mut run) = (0, 0, 0);
-        let whole = radiances.iter().all(|value| value.is_finite());
+        // Without a branch, so that several are looked at at once.
+        let whole = radiances.iter().fold(true, |whole, value| whole & value.is_finite());
         for channel in self.readings.band.axis.sorted().iter().filter(|_| !whole) {
             if self.excused[*channel] {
                 continue;
@@ -161,9 +172,10 @@ impl SpectraCheck<'_> {
             }
         }
         let key = if 2 * missing < expected { key(radiances) } else { 0 };
-        let window = self.window.signal(radiances);
+        let window = self.compared.window.signal(radiances);
+        let uniform = self.compared.uniform.signal(radiances);
         let (score, ringing, spikes) = (f64::NAN, None, Vec::new());
-        SpectrumReading { missing, stretch, score, ringing, spikes, window, key }
+        SpectrumReading { missing, stretch, score, ringing, spikes, window, uniform, key }
     }
 
     /// Score and ringing of a residual, and whether it is so far below all limits that it need not
@@ -174,14 +186,10 @@ impl SpectraCheck<'_> {
         windows: Option<&RingingWindows>,
         reading: &mut SpectrumReading,
     ) -> bool {
-        let (mut squares, mut largest) = (0.0_f64, 0.0_f64);
-        for (value, scale) in rest.iter().zip(&self.spike_scale) {
-            let value = f64::from(*value);
-            squares += value * value;
-            largest = largest.max((value * scale).abs());
-        }
+        let (squares, largest) = squares_and_largest(rest, &self.spike_scale);
         reading.score = (squares / rest.len() as f64).sqrt();
-        reading.ringing = windows.map(|windows| windows.of(|at| f64::from(rest[at])));
+        reading.ringing = windows.map(|windows| windows.of_whole(rest));
+        let largest = f64::from(largest);
         reading.score < NEAR * self.unusual && largest < NEAR * self.spike
     }
 
@@ -196,7 +204,8 @@ impl SpectraCheck<'_> {
         reading.score = score(residual);
         let there = residual.iter().filter(|value| value.is_finite()).count() as f64;
         let size = |at: Option<usize>| {
-            let value = at.and_then(|at| Some((residual.get(at)? * self.spike_scale[at]).abs()));
+            let scale = |at: usize| f64::from(self.spike_scale[at]);
+            let value = at.and_then(|at| Some((residual.get(at)? * scale(at)).abs()));
             value.filter(|value| value.is_finite()).unwrap_or(0.0)
         };
         let mut standing_out = Vec::new();
@@ -214,6 +223,28 @@ impl SpectraCheck<'_> {
             windows.of(|at| if standing_out.contains(&at) { 0.0 } else { residual[at] })
         });
     }
+}
+
+/// Sums that grow side by side.
+const LANES: usize = 8;
+
+/// The sum of squares, and the largest size after scaling.
+fn squares_and_largest(values: &[f32], scale: &[f32]) -> (f64, f32) {
+    let (mut sums, mut largest) = ([0.0_f64; LANES], [0.0_f32; LANES]);
+    let mut values = values.chunks_exact(LANES);
+    let mut scale = scale.chunks_exact(LANES);
+    for (values, scale) in values.by_ref().zip(scale.by_ref()) {
+        for lane in 0..LANES {
+            sums[lane] += f64::from(values[lane]) * f64::from(values[lane]);
+            let size = (values[lane] * scale[lane]).abs();
+            largest[lane] = if size > largest[lane] { size } else { largest[lane] };
+        }
+    }
+    for (value, scale) in values.remainder().iter().zip(scale.remainder()) {
+        sums[0] += f64::from(*value) * f64::from(*value);
+        largest[0] = largest[0].max((value * scale).abs());
+    }
+    (sums.iter().sum(), largest.into_iter().fold(0.0, f32::max))
 }
 
 /// A number that is the same for the same values; never 0.

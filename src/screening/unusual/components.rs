@@ -7,7 +7,7 @@
 
 use faer::linalg::matmul::matmul;
 use faer::linalg::solvers::{Qr, SelfAdjointEigen};
-use faer::{Accum, Mat, MatRef, Par, Side};
+use faer::{Accum, Mat, MatMut, MatRef, Par, Side};
 use rand_chacha::ChaCha8Rng;
 use rand_chacha::rand_core::SeedableRng;
 use rand_distr::{Distribution, StandardNormal};
@@ -69,6 +69,15 @@ pub fn product(one: MatRef<'_, f64>, other: MatRef<'_, f64>) -> Mat<f64> {
         matmul(out, Accum::Replace, one, other, 1.0, Par::Seq);
     });
     out
+}
+
+/// Takes a product off, its rows in pieces side by side.
+pub fn take_product(from: MatMut<'_, f64>, one: MatRef<'_, f64>, other: MatRef<'_, f64>) {
+    let pieces = from.par_row_chunks_mut(PIECE);
+    let rows = one.par_row_chunks(PIECE);
+    pieces.zip(rows).for_each(|(from, one)| {
+        matmul(from, Accum::Add, one, other, -1.0, Par::Seq);
+    });
 }
 
 fn orthonormal(columns: &Mat<f64>) -> Mat<f64> {

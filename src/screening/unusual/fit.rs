@@ -1,11 +1,12 @@
 //! A basis from spectra that hold a few unusual ones and a few faulty channels.
 
-use faer::{Mat, MatRef};
+use faer::{Mat, MatMut, MatRef};
 use rayon::prelude::*;
 
-use super::basis::{Basis, TrainingScores};
-use super::components::{Components, POWER_STEPS, leading_components, product};
-use crate::spectral::{NoiseShape, RingingWindows, centre_and_deviation, deviation_from_zero};
+use super::basis::{Basis, TrainingScores, score};
+use super::components::{Components, POWER_STEPS, leading_components, product, take_product};
+use super::noise_of_rows::{noise_factors, shape};
+use crate::spectral::{NoiseShape, RingingWindows, centre_and_deviation};
 
 /// Spectra of one band: rows of complete spectra over channels by rising wavenumber.
 #[derive(Debug, Clone)]
@@ -99,35 +100,66 @@ pub fn judged_by(basis: Basis, rows: &Rows) -> Option<Fitted> {
     }
     let place = |channel: &usize| basis.channels.iter().position(|one| one == channel);
     let places: Vec<Option<usize>> = rows.channels.iter().map(place).collect();
-    let band = rows.channels.iter().max().map_or(0, |last| last + 1);
-    let all: Vec<Vec<f64>> = rows
-        .radiances
-        .par_chunks_exact(width)
-        .map(|row| {
-            let mut radiances = vec![f64::NAN; band];
-            rows.channels.iter().zip(row).for_each(|(channel, value)| radiances[*channel] = *value);
-            let residual = basis.residual(&radiances);
-            places.iter().map(|place| place.map_or(f64::NAN, |place| residual[place])).collect()
-        })
+    // Where the basis has its channels in the rows.
+    let in_rows: Vec<usize> = basis
+        .channels
+        .iter()
+        .filter_map(|channel| rows.channels.iter().position(|one| one == channel))
         .collect();
+    let channels = basis.channels.len();
+    let mut normal = vec![0.0; count * channels];
+    normal.par_chunks_exact_mut(channels).zip(rows.radiances.par_chunks_exact(width)).for_each(
+        |(out, row)| {
+            for (at, (out, place)) in out.iter_mut().zip(&in_rows).enumerate() {
+                *out = (row[*place] - basis.mean[at]) / basis.noise[at];
+            }
+        },
+    );
+    let vectors = MatRef::from_row_major_slice(&basis.vectors, basis.components(), channels);
+    take_off(&mut normal, channels, vectors.transpose());
+    let mut residuals = vec![f64::NAN; count * width];
+    spread_out(&normal, &in_rows, &mut residuals, width);
     let leverages = basis.leverages();
     let taken: Vec<f64> =
         places.iter().map(|place| place.map_or(0.0, |place| leverages[place])).collect();
-    let residuals = Mat::from_fn(count, width, |row, channel| all[row][channel]);
     let factors = noise_factors(rows, &residuals, &taken);
     let shape = shape(rows, &residuals);
     let noise = places.iter().zip(&factors).map(|(place, factor)| match place {
         Some(place) => basis.noise[*place] * factor,
         None => f64::NAN,
     });
-    let in_noise = all.iter().flat_map(|row| row.iter().zip(&factors).map(|(one, f)| one / f));
+    divide(&mut residuals, &factors);
     Some(Fitted {
         noise: noise.collect(),
         set_aside: places.iter().map(Option::is_none).collect(),
-        residuals: in_noise.collect(),
+        residuals,
         shape,
         basis,
     })
+}
+
+/// Takes off what components (channels x components) explain of normalised spectra, one behind the
+/// other, and gives what lies along them.
+fn take_off(spectra: &mut [f64], channels: usize, components: MatRef<'_, f64>) -> Mat<f64> {
+    let count = spectra.len() / channels.max(1);
+    let along = product(MatRef::from_row_major_slice(spectra, count, channels), components);
+    let mut rest = MatMut::from_row_major_slice_mut(spectra, count, channels);
+    take_product(rest.as_mut(), along.as_ref(), components.transpose());
+    along
+}
+
+/// Puts the values of some channels into their places among all.
+fn spread_out(some: &[f64], places: &[usize], all: &mut [f64], width: usize) {
+    let rows = all.par_chunks_exact_mut(width).zip(some.par_chunks_exact(places.len()));
+    rows.for_each(|(all, some)| {
+        places.iter().zip(some).for_each(|(place, value)| all[*place] = *value);
+    });
+}
+
+/// Divides each channel of rows by its factor.
+fn divide(rows: &mut [f64], factors: &[f64]) {
+    rows.par_chunks_exact_mut(factors.len())
+        .for_each(|row| row.iter_mut().zip(factors).for_each(|(value, factor)| *value /= factor));
 }
 
 struct State<'r> {
@@ -147,7 +179,7 @@ struct Stage {
     vectors: Mat<f64>,
     variances: Vec<f64>,
     /// All rows x all channels, noise units.
-    residuals: Mat<f64>,
+    residuals: Vec<f64>,
     leverages: Vec<f64>,
     scores: Vec<f64>,
 }
@@ -155,22 +187,23 @@ struct Stage {
 impl State<'_> {
     fn stage(&self, wanted: usize, power_steps: usize) -> Option<Stage> {
         let width = self.rows.channels.len();
-        let all = MatRef::from_row_major_slice(&self.rows.radiances, self.rows.count(), width);
-        let mean: Vec<f64> = (0..width)
-            .into_par_iter()
-            .map(|channel| {
-                let sum: f64 = self.kept.iter().map(|row| all[(*row, channel)]).sum();
-                sum / self.kept.len() as f64
-            })
+        let mean = self.mean();
+        let normal = self.normalised(&mean);
+        let mut used = vec![0.0; self.rows.count() * self.used.len()];
+        used.par_chunks_exact_mut(self.used.len()).zip(normal.par_chunks_exact(width)).for_each(
+            |(out, row)| {
+                out.iter_mut().zip(&self.used).for_each(|(out, channel)| *out = row[*channel]);
+            },
+        );
+        let fitted: Vec<f64> = self
+            .kept
+            .iter()
+            .flat_map(|row| &used[row * self.used.len()..][..self.used.len()])
+            .copied()
             .collect();
-        let normal = |row: usize, channel: usize| {
-            (all[(row, channel)] - mean[channel]) / self.noise[channel]
-        };
-        let fitted = Mat::from_fn(self.kept.len(), self.used.len(), |row, channel| {
-            normal(self.kept[row], self.used[channel])
-        });
+        let fitted = MatRef::from_row_major_slice(&fitted, self.kept.len(), self.used.len());
         let wanted = wanted.min(self.kept.len() / 4).min(self.used.len() / 4);
-        let found = leading_components(fitted.as_ref(), wanted, power_steps)?;
+        let found = leading_components(fitted, wanted, power_steps)?;
         // Above the edge that noise alone does not pass [Marchenko & Pastur 1967], for apodised noise
         // at most so many times higher as its largest power.
         let ratio = self.used.len() as f64 / self.kept.len() as f64;
@@ -180,29 +213,43 @@ impl State<'_> {
         let components = kept.len();
         let vectors =
             Mat::from_fn(self.used.len(), components, |row, k| found.vectors[(row, kept[k])]);
-        let used = Mat::from_fn(self.rows.count(), self.used.len(), |row, channel| {
-            normal(row, self.used[channel])
-        });
-        let along = product(used.as_ref(), vectors.as_ref());
-        let rebuilt = product(along.as_ref(), vectors.transpose());
-        let mut residuals = Mat::zeros(self.rows.count(), width);
-        for (place, &channel) in self.used.iter().enumerate() {
-            for row in 0..self.rows.count() {
-                residuals[(row, channel)] = used[(row, place)] - rebuilt[(row, place)];
-            }
-        }
-        let scores = (0..self.rows.count())
-            .map(|row| {
-                let squares = self.used.iter().map(|channel| residuals[(row, *channel)].powi(2));
-                (squares.sum::<f64>() / self.used.len() as f64).sqrt()
-            })
-            .collect();
+        let along = take_off(&mut used, self.used.len(), vectors.as_ref());
+        let scores = used.chunks_exact(self.used.len()).map(score).collect();
+        let mut residuals = vec![0.0; normal.len()];
+        spread_out(&used, &self.used, &mut residuals, width);
         self.regress_the_others(&along, &normal, &mut residuals);
         let leverages = (0..self.used.len())
             .map(|place| (0..components).map(|k| vectors[(place, k)].powi(2)).sum())
             .collect();
         let variances = kept.iter().map(|k| found.variances[*k]).collect();
         Some(Stage { mean, vectors, variances, residuals, leverages, scores })
+    }
+
+    /// Mean spectrum of the kept rows.
+    fn mean(&self) -> Vec<f64> {
+        let width = self.rows.channels.len();
+        let mut mean = vec![0.0; width];
+        for row in &self.kept {
+            let row = &self.rows.radiances[row * width..][..width];
+            mean.iter_mut().zip(row).for_each(|(sum, value)| *sum += value);
+        }
+        mean.iter_mut().for_each(|sum| *sum /= self.kept.len() as f64);
+        mean
+    }
+
+    /// All rows in noise units.
+    fn normalised(&self, mean: &[f64]) -> Vec<f64> {
+        let width = self.rows.channels.len();
+        let weights: Vec<f64> = self.noise.iter().map(|noise| 1.0 / noise).collect();
+        let mut normal = vec![0.0; self.rows.radiances.len()];
+        let rows = normal.par_chunks_exact_mut(width);
+        rows.zip(self.rows.radiances.par_chunks_exact(width)).for_each(|(out, row)| {
+            let values = row.iter().zip(mean.iter().zip(&weights));
+            out.iter_mut().zip(values).for_each(|(out, (value, (mean, weight)))| {
+                *out = (value - mean) * weight;
+            });
+        });
+        normal
     }
 
     /// The first components but those that alternate: ringing in some spectra must stay unexplained.
@@ -225,17 +272,15 @@ impl State<'_> {
 
     /// Channels that were set aside, as far as the components of the others explain them: by least
     /// squares over the kept rows, in which the components do not go together.
-    fn regress_the_others(
-        &self,
-        along: &Mat<f64>,
-        normal: &impl Fn(usize, usize) -> f64,
-        residuals: &mut Mat<f64>,
-    ) {
+    fn regress_the_others(&self, along: &Mat<f64>, normal: &[f64], residuals: &mut [f64]) {
+        let width = self.rows.channels.len();
         for channel in (0..self.rows.channels.len()).filter(|one| !self.used.contains(one)) {
             let weights: Vec<f64> = (0..along.ncols())
                 .map(|k| {
-                    let products =
-                        self.kept.iter().map(|row| along[(*row, k)] * normal(*row, channel));
+                    let products = self
+                        .kept
+                        .iter()
+                        .map(|row| along[(*row, k)] * normal[row * width + channel]);
                     let squares = self.kept.iter().map(|row| along[(*row, k)].powi(2));
                     products.sum::<f64>() / squares.sum::<f64>()
                 })
@@ -243,7 +288,7 @@ impl State<'_> {
             for row in 0..self.rows.count() {
                 let explained: f64 =
                     weights.iter().enumerate().map(|(k, weight)| weight * along[(row, k)]).sum();
-                residuals[(row, channel)] = normal(row, channel) - explained;
+                residuals[row * width + channel] = normal[row * width + channel] - explained;
             }
         }
     }
@@ -301,51 +346,9 @@ impl State<'_> {
             },
         };
         let set_aside = (0..width).map(|one| self.used.binary_search(&one).is_err()).collect();
-        let residuals = (0..count)
-            .flat_map(|row| (0..width).map(move |channel| (row, channel)))
-            .map(|at| stage.residuals[at] / factors[at.1])
-            .collect();
+        let mut residuals = stage.residuals;
+        divide(&mut residuals, &factors);
         let noise = self.noise.iter().zip(&factors).map(|(noise, factor)| noise * factor).collect();
         Fitted { basis, set_aside, residuals, noise, shape }
     }
-}
-
-/// The noise of each channel in units of what was taken for it: what the residuals of pairs differ
-/// by, corrected for what the components took along.
-fn noise_factors(rows: &Rows, residuals: &Mat<f64>, taken: &[f64]) -> Vec<f64> {
-    let factor = |channel: usize| {
-        let pairs = rows.pairs.iter();
-        let difference = |(one, other): &(usize, usize)| {
-            residuals[(*one, channel)] - residuals[(*other, channel)]
-        };
-        let mut differences: Vec<f64> = pairs.map(difference).collect();
-        let deviation = deviation_from_zero(&mut differences) / std::f64::consts::SQRT_2;
-        // A channel whose neighbours agree to the last bit is coarsely packed.
-        (deviation / f64::sqrt((1.0 - taken[channel]).max(0.05))).max(0.05)
-    };
-    (0..rows.channels.len()).into_par_iter().map(factor).collect()
-}
-
-/// Correlations between neighbours, of differences between pairs, so that what is left of the scene
-/// counts little; clipped, so that outliers do.
-fn shape(rows: &Rows, residuals: &Mat<f64>) -> NoiseShape {
-    let width = rows.channels.len();
-    let clipped = |(one, other): &(usize, usize)| -> Vec<f64> {
-        let difference = |c| residuals[(*one, c)] - residuals[(*other, c)];
-        let size = |c| f64::clamp(difference(c), -5.0, 5.0);
-        (0..width).map(size).map(|one| if one.is_nan() { 0.0 } else { one }).collect()
-    };
-    let differences: Vec<Vec<f64>> = rows.pairs.iter().map(clipped).collect();
-    NoiseShape::measured(|lag| {
-        let (mut products, mut squares) = (0.0, 0.0);
-        for first in 0..width.saturating_sub(lag) {
-            if rows.adjacent[first..first + lag].iter().all(|adjacent| *adjacent) {
-                for row in &differences {
-                    products += row[first] * row[first + lag];
-                    squares += 0.5 * (row[first].powi(2) + row[first + lag].powi(2));
-                }
-            }
-        }
-        (squares > 0.0).then(|| products / squares)
-    })
 }

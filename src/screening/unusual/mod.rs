@@ -5,10 +5,12 @@ mod components;
 mod fit;
 #[cfg(test)]
 mod fit_tests;
+mod noise_of_rows;
 mod residuals;
 mod saved;
 
 pub use basis::{Basis, TrainingScores, score};
 pub use fit::{Fitted, Rows, fit, judged_by};
+pub use noise_of_rows::pair_deviations;
 pub use residuals::ManyResiduals;
 pub use saved::{SavedBases, fit_together, instrument_shape};

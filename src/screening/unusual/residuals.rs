@@ -13,6 +13,9 @@ pub struct ManyResiduals<'b> {
     vectors: Vec<f32>,
     /// One over the noise.
     weights: Vec<f64>,
+    /// Stretches of channels that follow each other in the basis and in the band: place in the basis,
+    /// place in the band, length.
+    stretches: Vec<(usize, usize, usize)>,
 }
 
 impl<'b> ManyResiduals<'b> {
@@ -22,14 +25,21 @@ impl<'b> ManyResiduals<'b> {
             basis,
             vectors: basis.vectors.iter().map(|value| *value as f32).collect(),
             weights: basis.noise.iter().map(|noise| 1.0 / noise).collect(),
+            stretches: stretches(&basis.channels),
         }
     }
 
     /// A spectrum (radiances of all channels of the band) in noise units; NaN where missing.
     pub fn normalise(&self, radiances: &[f64], out: &mut [f32]) {
-        let channels = self.basis.channels.iter().zip(self.basis.mean.iter().zip(&self.weights));
-        for (out, (&channel, (mean, weight))) in out.iter_mut().zip(channels) {
-            *out = ((radiances[channel] - mean) * weight) as f32;
+        for (place, channel, length) in &self.stretches {
+            let own = *place..place + length;
+            let radiances = &radiances[*channel..channel + length];
+            let weights = self.basis.mean[own.clone()].iter().zip(&self.weights[own.clone()]);
+            for (out, (value, (mean, weight))) in
+                out[own].iter_mut().zip(radiances.iter().zip(weights))
+            {
+                *out = ((value - mean) * weight) as f32;
+            }
         }
     }
 
@@ -45,6 +55,18 @@ impl<'b> ManyResiduals<'b> {
         matmul(along.as_mut(), Accum::Replace, spectra.as_ref(), transposed, 1.0, Par::Seq);
         matmul(spectra.as_mut(), Accum::Add, along.as_ref(), vectors, -1.0, Par::Seq);
     }
+}
+
+/// Stretches of channels that follow each other upwards: place, channel, length.
+fn stretches(channels: &[usize]) -> Vec<(usize, usize, usize)> {
+    let mut stretches: Vec<(usize, usize, usize)> = Vec::new();
+    for (place, channel) in channels.iter().enumerate() {
+        match stretches.last_mut() {
+            Some((_, first, length)) if *first + *length == *channel => *length += 1,
+            _ => stretches.push((place, *channel, 1)),
+        }
+    }
+    stretches
 }
 
 #[cfg(test)]

@@ -43,6 +43,7 @@ pub fn problem_rows(app: &App) -> Vec<MessageRow> {
         rows.extend(bench.review.cube().notes().iter().map(of_file));
         let producer = &bench.review.producer().problems;
         rows.extend(producer.iter().map(|text| warning(text.clone())));
+        rows.extend(bench.review.bases_problem().map(|text| warning(text.to_owned())));
         if let Some(record) = bench.record.open() {
             rows.extend(record.problems().iter().map(|text| warning(text.clone())));
             rows.extend(record.state().problems.iter().map(|text| warning(text.clone())));
