@@ -21,10 +21,25 @@ pub struct FullSize {
 impl FullSize {
     /// 45 x 30 x 9 footprints of 717 + 869 + 637 channels; 3 x 4 x 9 for a test run.
     pub fn make(size: Size) -> Result<Self, Box<dyn std::error::Error>> {
-        let (shape, footprints, rounds) = match size {
-            Size::Full => ("45x30x9", 45 * 30 * 9, 7),
-            Size::Small => ("3x4x9", 3 * 4 * 9, 1),
-        };
+        match size {
+            Size::Full => Self::of_shape("45x30x9", 45 * 30 * 9, 7),
+            Size::Small => Self::of_shape("3x4x9", 3 * 4 * 9, 1),
+        }
+    }
+
+    /// 135 x 90 footprints of 2378 channels; 6 x 6 for a test run.
+    pub fn make_grating(size: Size) -> Result<Self, Box<dyn std::error::Error>> {
+        match size {
+            Size::Full => Self::of_shape("135x90", 135 * 90, 7),
+            Size::Small => Self::of_shape("6x6", 6 * 6, 1),
+        }
+    }
+
+    fn of_shape(
+        shape: &str,
+        footprints: usize,
+        rounds: usize,
+    ) -> Result<Self, Box<dyn std::error::Error>> {
         let folder = tempfile::tempdir()?;
         let status = Command::new(PROGRAM)
             .args(["synth", "--scene", "sea-of-lowen", "--shape", shape, "--out"])

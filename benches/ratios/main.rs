@@ -1,6 +1,6 @@
 //! Ratios measured in one run: each fast path against the plain one that it replaces.
 //!
-//! `cargo bench --bench ratios` prints one table per section. Times of one machine say little about
+//! `cargo bench --bench ratios` prints one table per section, `-- reading screening` those of some parts. Times of one machine say little about
 //! another; ratios of one run do. To add a section, write a module with a function that returns a
 //! [`table::Section`] and name it in `main`.
 #![allow(clippy::print_stdout)]
@@ -35,19 +35,33 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     // Cargo says `--bench` when it measures; a test run of all targets does not.
     let measuring = std::env::args().any(|argument| argument == "--bench");
     let size = if measuring { Size::Full } else { Size::Small };
-    println!("{}", inversion::section(size));
+    // Names of parts, if only some are wanted.
+    let named: Vec<String> =
+        std::env::args().skip(1).filter(|argument| !argument.starts_with('-')).collect();
+    let wants = |part: &str| named.is_empty() || named.iter().any(|name| name == part);
+    if wants("inversion") {
+        println!("{}", inversion::section(size));
+    }
     let python = Python::find();
-    for section in reading::sections(size, python.as_ref())? {
-        println!("{section}");
+    let mut sections = Vec::new();
+    if wants("reading") {
+        sections = reading::sections(size, python.as_ref())?;
+        sections.drain(..).for_each(|section| println!("{section}"));
     }
     let full = FullSize::make(size)?;
-    println!("{}", tabulating::section(&full, python.as_ref())?);
-    for section in picturing::sections(&full)? {
-        println!("{section}");
+    if wants("tabulating") {
+        println!("{}", tabulating::section(&full, python.as_ref())?);
     }
-    for section in reviewing::sections(&full)? {
-        println!("{section}");
+    if wants("picturing") {
+        sections.extend(picturing::sections(&full)?);
     }
-    println!("{}", screening::section(&full)?);
+    if wants("reviewing") {
+        sections.extend(reviewing::sections(&full)?);
+    }
+    sections.drain(..).for_each(|section| println!("{section}"));
+    if wants("screening") {
+        println!("{}", screening::section(&full)?);
+        println!("{}", screening::section(&FullSize::make_grating(size)?)?);
+    }
     Ok(())
 }

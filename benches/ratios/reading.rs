@@ -124,7 +124,7 @@ fn section(
 }
 
 /// All values by the library alone, in this process.
-fn library(path: &Path) -> netcdf::Result<Vec<Vec<f32>>> {
+pub fn library(path: &Path) -> netcdf::Result<Vec<Vec<f32>>> {
     let file = netcdf::open(path)?;
     let bands = file.variables().filter(|variable| variable.name().starts_with("radiance"));
     bands.map(|band| band.get_values(..)).collect()
@@ -159,7 +159,7 @@ fn resident_megabytes() -> f64 {
 
 /// Time that processors spend on one run, over all threads and ended children: unlike the time on the
 /// clock it hardly depends on what else the machine does.
-fn processor_milliseconds(rounds: usize, mut run: impl FnMut()) -> f64 {
+pub fn processor_milliseconds(rounds: usize, mut run: impl FnMut()) -> f64 {
     let before = processor_ticks();
     (0..rounds).for_each(|_| run());
     // A tick is 10 ms, whatever the kernel's own clock.

@@ -65,7 +65,7 @@ impl Set {
 }
 
 fn perturbed(scene: SceneName, shape: Shape, seed: u64) -> Recipe {
-    Recipe { scene, shape, seed, perturbed: Some(seed), faulty: false }
+    Recipe { scene, shape, seed, perturbed: Some(seed), faulty: false, nedn: None }
 }
 
 /// Makes the granule of a recipe in a folder, unless it is there already.

@@ -29,6 +29,7 @@ fn recipes() -> Vec<Recipe> {
         seed,
         perturbed: Some(seed),
         faulty,
+        nedn: None,
     };
     let first = SceneName::ALL.into_iter().map(|scene| recipe(scene, INTERFEROMETER, false));
     let second = AGAIN.into_iter().map(|(scene, faulty)| recipe(scene, GRATING, faulty));

@@ -7,7 +7,7 @@ use serde_json::{Value, json};
 
 use super::table::present;
 use crate::screening::Evidence;
-use crate::screening::health::{BandHealth, Check, Examined, Finding, Subject};
+use crate::screening::health::{BandHealth, Check, DetectorShift, Examined, Finding, Subject};
 use crate::spectral::median;
 use crate::system::clean_text;
 
@@ -52,6 +52,8 @@ fn of_band(examined: &Examined, band: &BandHealth) -> Value {
         .map(|one| one.noise / one.expected)
         .filter(|one| one.is_finite())
         .collect();
+    let mut over_file: Vec<f64> =
+        band.noise.iter().map(|one| one.noise / one.told).filter(|one| one.is_finite()).collect();
     let basis = band.basis.as_ref().map(|basis| {
         json!({
             "components": basis.components(),
@@ -66,22 +68,26 @@ fn of_band(examined: &Examined, band: &BandHealth) -> Value {
     let detectors = band.detectors.iter().map(|one| {
         json!({
             "noise_ratio": present(one.noise),
+            "noise_ratio_in_file": one.told_noise,
             "bias_K": present(one.bias),
             "bias_deviation_K": present(one.bias_deviation),
             "uniform_bias_K": present(one.uniform_bias),
             "uniform_bias_deviation_K": present(one.uniform_deviation),
         })
     });
-    let shifts = band.shifts.iter().map(
-        |one| json!({ "detector": one.detector, "ppm": one.ppm, "deviation_ppm": one.deviation }),
-    );
+    let of_shift = |one: &DetectorShift| json!({ "detector": one.detector, "ppm": one.ppm, "deviation_ppm": one.deviation });
+    let shifts = |all: &[DetectorShift]| all.iter().map(of_shift).collect::<Vec<_>>();
+    let absolute = band.absolute_shifts.as_ref().map(|all| shifts(all)).map_err(|why| *why);
     json!({
         "band": examined.band_name(band.band),
         "basis": basis,
         "noise_over_expected": present(median(&mut ratios)),
         "noise_in_file": band.has_nedn,
+        "noise_over_file": present(median(&mut over_file)),
         "detectors": detectors.collect::<Vec<_>>(),
-        "shifts": shifts.collect::<Vec<_>>(),
+        "shifts": shifts(&band.shifts),
+        "absolute_shifts": absolute.as_ref().ok(),
+        "absolute_shift_not_applicable": absolute.as_ref().err(),
         "sweep_difference_K": band.sweep.map(|(difference, _)| difference),
     })
 }

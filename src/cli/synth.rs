@@ -9,7 +9,7 @@ use super::Exit;
 use super::exit::UsageError;
 use super::output::Output;
 use crate::synth::{
-    Calculation, DEFAULT_SEED, Recipe, SceneName, Shape, make_calculated, make_granule,
+    Calculation, DEFAULT_SEED, Recipe, SceneName, Shape, ToldNoise, make_calculated, make_granule,
 };
 use crate::system::Cancel;
 
@@ -35,6 +35,10 @@ pub struct Arguments {
     /// Plant a defect of every kind, labelled in the truth, in place of those of the scene.
     #[arg(long)]
     faulty: bool,
+    /// Write the noise of the channels into the file: `channels`, one for each, or `detectors`, each
+    /// detector's own, and then they differ.
+    #[arg(long, value_name = "FOR")]
+    nedn: Option<String>,
     /// Write beside each granule what a model calculates for its footprints under clear sky, with a known
     /// bias: exact knows air and ground, model is off as short forecasts are.
     #[arg(long, value_name = "KIND")]
@@ -79,6 +83,11 @@ fn scenes(names: &[String]) -> anyhow::Result<Vec<SceneName>> {
     Ok(SceneName::ALL.into_iter().filter(is_named).collect())
 }
 
+fn told_noise(text: &str) -> anyhow::Result<ToldNoise> {
+    let wrong = || UsageError(format!("--nedn: {text:?} is neither channels nor detectors"));
+    Ok(ToldNoise::parse(text).ok_or_else(wrong)?)
+}
+
 /// A granule, and what is calculated for it.
 struct Planned {
     recipe: Recipe,
@@ -100,6 +109,7 @@ fn calculation(text: &str) -> anyhow::Result<Calculation> {
 /// What the arguments mean: recipes and where they go.
 fn plan(arguments: &Arguments) -> anyhow::Result<Vec<Planned>> {
     let calculated = arguments.calculated.as_deref().map(calculation).transpose()?;
+    let nedn = arguments.nedn.as_deref().map(told_noise).transpose()?;
     let shape =
         Shape::parse(&arguments.shape).map_err(|error| UsageError(format!("--shape: {error}")))?;
     let scenes = scenes(&arguments.scene)?;
@@ -111,6 +121,7 @@ fn plan(arguments: &Arguments) -> anyhow::Result<Vec<Planned>> {
             seed: arguments.seed,
             perturbed: arguments.perturbed,
             faulty: arguments.faulty,
+            nedn,
         })
         .map(|recipe| Planned {
             recipe,

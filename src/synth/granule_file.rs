@@ -86,9 +86,17 @@ fn write(
     define_coordinates(&mut file, layout)?;
     for band in &maker.instrument.bands {
         define_band(&mut file, maker, layout, band)?;
+        if let Some(told) = recipe.nedn {
+            told.define(&mut file, layout, band)?;
+        }
     }
     define_truth(&mut file, maker, layout)?;
     put_coordinates(&mut file, maker, layout, &geometry)?;
+    for band in &maker.instrument.bands {
+        if let Some(told) = recipe.nedn {
+            told.put(&mut file, maker, layout, band)?;
+        }
+    }
     let lines = maker.swath.lines;
     let mut truths = Vec::with_capacity(geometry.len());
     for first in (0..lines).step_by(layout.lines_in_chunk) {

@@ -23,6 +23,7 @@ mod spectra;
 mod storage;
 mod sun;
 mod swath;
+mod told_noise;
 mod truth;
 mod typical_noise;
 
@@ -31,3 +32,4 @@ pub use granule_file::{ContentError, SynthError, make_granule};
 pub use recipe::{DEFAULT_SEED, Recipe};
 pub use scenes::SceneName;
 pub use shape::{Shape, ShapeError};
+pub use told_noise::ToldNoise;

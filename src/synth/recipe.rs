@@ -8,6 +8,7 @@ use super::scene::Setting;
 use super::scenes::SceneName;
 use super::shape::Shape;
 use super::swath::Swath;
+use super::told_noise::ToldNoise;
 
 /// Scene, size and seed of a granule.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -22,6 +23,8 @@ pub struct Recipe {
     pub perturbed: Option<u64>,
     /// Whether every kind of defect is planted, in place of those of the scene or the climate.
     pub faulty: bool,
+    /// Whether, and how, the file tells its noise.
+    pub nedn: Option<ToldNoise>,
 }
 
 /// The seed of the sample granules.
@@ -41,7 +44,8 @@ impl Recipe {
         };
         let perturbed = self.perturbed.map_or_else(String::new, |seed| format!("_perturbed{seed}"));
         let faulty = if self.faulty { "_faulty" } else { "" };
-        format!("synthetic_brindle_{scene}{shape}{seed}{perturbed}{faulty}.nc")
+        let nedn = self.nedn.map_or_else(String::new, |told| format!("_nedn_{}", told.label()));
+        format!("synthetic_brindle_{scene}{shape}{seed}{perturbed}{faulty}{nedn}.nc")
     }
 
     /// Name of the file of what a model calculates for the granule.
@@ -54,8 +58,9 @@ impl Recipe {
         let perturbed =
             self.perturbed.map_or_else(String::new, |seed| format!(" --perturbed {seed}"));
         let faulty = if self.faulty { " --faulty" } else { "" };
+        let nedn = self.nedn.map_or_else(String::new, |told| format!(" --nedn {}", told.label()));
         format!(
-            "radsieve synth --scene {} --shape {} --seed {}{perturbed}{faulty}",
+            "radsieve synth --scene {} --shape {} --seed {}{perturbed}{faulty}{nedn}",
             self.scene.label(),
             self.shape.label(),
             self.seed
@@ -99,6 +104,7 @@ mod tests {
             seed,
             perturbed: None,
             faulty: false,
+            nedn: None,
         };
         assert_eq!(recipe(Shape::Sample, 1).file_name(), "synthetic_brindle_sea_of_lowen.nc");
         assert_eq!(

@@ -161,7 +161,11 @@ impl Maker {
         for (number, band) in self.instrument.bands.iter().enumerate() {
             let clean = &radiances[first..first + band.wavenumbers.len()];
             first += band.wavenumbers.len();
-            let noise = noise(self.recipe.seed, footprint, number, band, clean);
+            let mut noise = noise(self.recipe.seed, footprint, number, band, clean);
+            if let Some(told) = self.recipe.nedn {
+                let factor = told.factor(self.place(footprint, number).detector);
+                noise.iter_mut().for_each(|value| *value *= factor);
+            }
             let mut spectrum: Vec<f32> = clean.iter().zip(&noise).map(|(r, n)| r + n).collect();
             let place = self.place(footprint, number);
             truth.defects |= self.faults.spoil(&place, band, &noise, &mut spectrum);

@@ -148,3 +148,91 @@ fn spectra_are_held_against_components_of_other_granules() {
     let stderr = command.assert().failure().get_output().stderr.clone();
     assert!(String::from_utf8(stderr).unwrap().contains("radsieve train"));
 }
+
+#[test]
+fn the_noise_that_a_file_tells_is_what_its_spectra_have() {
+    let folder = tempfile::tempdir().unwrap();
+    let folder = folder.path();
+    for told in ["channels", "detectors"] {
+        let scene = [
+            "synth",
+            "--out",
+            ".",
+            "--scene",
+            "sea-of-lowen",
+            "--shape",
+            "16x12x4",
+            "--nedn",
+            told,
+        ];
+        let file = folder.join(radsieve(folder, &scene).trim());
+        let found = screened(folder, &file);
+        for band in found["instrument"]["bands"].as_array().unwrap() {
+            assert_eq!(band["noise_in_file"], true);
+            // A median over hundreds of channels, each known to 5 %; the files' detectors have 0.8 to
+            // 1.4 of the noise, and all together a little more than their median.
+            let over = band["noise_over_file"].as_f64().unwrap();
+            assert!((over - 1.0).abs() < 0.12, "{told}: {over}");
+            for (number, detector) in band["detectors"].as_array().unwrap().iter().enumerate() {
+                let factor = if told == "detectors" { 0.8 + 0.2 * number as f64 } else { 1.0 };
+                let usual = if told == "detectors" { 1.1 } else { 1.0 };
+                let in_file = detector["noise_ratio_in_file"].as_f64().unwrap();
+                assert!((in_file - factor / usual).abs() < 1e-6, "{in_file}");
+                let found = detector["noise_ratio"].as_f64().unwrap();
+                assert!((found / in_file - 1.0).abs() < 0.08, "{told} {number}: {found} {in_file}");
+            }
+        }
+        assert_eq!(findings(&found, "noisy detector").count(), 0);
+        assert_eq!(findings(&found, "noisy channel").count(), 0);
+    }
+}
+
+#[test]
+fn a_shift_is_absolute_where_clear_spectra_are_calculated() {
+    let folder = tempfile::tempdir().unwrap();
+    let folder = folder.path();
+    let shape = "16x12x4";
+    let scene = ["synth", "--out", ".", "--scene", "iskel-sound", "--shape", shape, "--faulty"];
+    let made = radsieve(folder, &[&scene[..], &["--calculated", "exact"]].concat());
+    let [granule, calculated] = made.lines().collect::<Vec<_>>()[..] else { panic!("{made}") };
+    let screen = ["screen", granule, "--campaign", "campaign", "--json", "--with", calculated];
+    let answer: Value = serde_json::from_str(&radsieve(folder, &screen)).unwrap();
+    let found = &answer["files"][0];
+    let shifts = found["instrument"]["bands"][0]["absolute_shifts"].as_array().unwrap();
+    assert_eq!(shifts.len(), 4, "{shifts:?}");
+    for shift in shifts {
+        let planted = if shift["detector"] == 3 { 25.0 } else { 0.0 };
+        let (ppm, deviation) =
+            (shift["ppm"].as_f64().unwrap(), shift["deviation_ppm"].as_f64().unwrap());
+        assert!((ppm - planted).abs() < 3.0 * deviation, "{shift}");
+        assert!(deviation < 3.0, "{shift}");
+    }
+    let told: Vec<&Value> = findings(found, "absolute spectral shift").collect();
+    assert_eq!(told.len(), 1);
+    assert!(told[0]["detector"] == 3 && told[0]["flag"].is_null());
+    let alone = screened(folder, &folder.join(granule));
+    let why = &alone["instrument"]["bands"][0]["absolute_shift_not_applicable"];
+    assert_eq!(why, "no calculated clear spectra are given");
+}
+
+#[test]
+fn what_the_producer_rejects_trains_nothing() {
+    let folder = tempfile::tempdir().unwrap();
+    let folder = folder.path();
+    let file = faulty(folder);
+    let file = file.to_str().unwrap();
+    let train = ["train", file, "--campaign", "campaign", "--json"];
+    let trained = || serde_json::from_str::<Value>(&radsieve(folder, &train)).unwrap();
+    let whole = trained();
+    assert_eq!(whole["rejected_by_producer"], 0);
+    let settings = "[quality.quality]\nmissing_values = 'reject'\n";
+    std::fs::write(folder.join("campaign/campaign.toml"), settings).unwrap();
+    let part = trained();
+    assert!(part["rejected_by_producer"].as_u64().unwrap() > 0);
+    // The last band lost nothing; of it the rejected footprints are missed, too.
+    let spectra = |answer: &Value| {
+        let band = &answer["bands"].as_array().unwrap()[1];
+        band["spectra"].as_u64().unwrap() + band["left_out"].as_u64().unwrap()
+    };
+    assert!(spectra(&part) < spectra(&whole), "{part} {whole}");
+}

@@ -1,11 +1,13 @@
 //! One band from its sample to its findings.
 
-use super::channels::{channel_noise, noisy_channels, popping_channels};
+use super::absolute_shift::{absolute_shifts, absolutely_shifted};
+use super::channels::{channel_noise, noisy_channels};
 use super::detectors::{DetectorChannels, detectors, sweep, sweep_difference};
 use super::examined::{BandHealth, BasisOrigin, UnusualSpectrum};
 use super::finding::{Check, Finding, Limit, Subject};
 use super::grid::ScanGrid;
 use super::limits::HealthLimits;
+use super::popping::popping_channels;
 use super::readings::BandReadings;
 use super::sample::{SAMPLE, Sample};
 use super::shift::{Lines, detector_shifts, shifted_detectors};
@@ -54,8 +56,9 @@ pub struct BandWork<'g> {
 impl<'g> BandWork<'g> {
     /// Takes the sample, finds the components, looks at every spectrum.
     pub fn of(
+        granule: &Granule,
         readings: BandReadings<'g>,
-        nedn: Option<Vec<f64>>,
+        told: Option<FileNoise>,
         saved: Option<&SavedBases>,
         grid: &ScanGrid,
         limits: &HealthLimits,
@@ -65,19 +68,20 @@ impl<'g> BandWork<'g> {
         let mut findings = sample.findings.clone();
         let mut noise = Vec::new();
         if let Some(fitted) = &fitted {
-            noise = channel_noise(&sample, fitted, nedn.as_deref());
+            noise = channel_noise(&sample, fitted, told.as_ref().map(|told| &told.channels[..]));
             findings.extend(noisy_channels(&readings, &noise, &fitted.set_aside, limits));
             findings.extend(popping_channels(&readings, &sample, fitted, grid, limits));
         }
         let basis = fitted.as_ref().map(|fitted| &fitted.basis);
         let limit = basis.map_or(f64::NAN, |basis| basis.limit(limits.unusual));
         let lines = fitted.as_ref().and_then(|fitted| Lines::of(&sample, fitted, grid));
+        let compared = DetectorChannels::of(&readings, &sample);
         let check = SpectraCheck {
             readings,
             basis,
             spike_scale: spike_scale(&sample, fitted.as_ref(), &findings),
             excused: &sample.excused,
-            compared: &DetectorChannels::of(&readings, &sample),
+            compared: &compared,
             lines: lines.as_ref(),
             spike: limits.spike,
             unusual: limit,
@@ -85,12 +89,17 @@ impl<'g> BandWork<'g> {
         let (spectra, sums) = check.all(grid);
         let shifts = lines.as_ref().map_or(Vec::new(), |lines| detector_shifts(lines, &sums));
         findings.extend(shifted_detectors(&readings, &shifts, limits));
+        let absolute_shifts =
+            absolute_shifts(granule, &readings, lines.as_ref(), &compared.window, grid);
+        let absolute = absolute_shifts.as_deref().unwrap_or_default();
+        findings.extend(absolutely_shifted(&readings, absolute, limits));
         let signals = [
             spectra.iter().map(|spectrum| spectrum.window).collect::<Vec<f64>>(),
             spectra.iter().map(|spectrum| spectrum.uniform).collect(),
         ];
+        let told_of = told.as_ref().map_or(&[][..], |told| &told.detectors);
         let (of_detectors, found) =
-            detectors(&readings, &sample, fitted.as_ref(), &signals, grid, limits);
+            detectors(&readings, &sample, fitted.as_ref(), told_of, &signals, grid, limits);
         findings.extend(found);
         findings.extend(sweep(&readings, &signals[0], grid, limits));
         let windows_limit = check.ringing_limit(limits.ringing);
@@ -101,10 +110,11 @@ impl<'g> BandWork<'g> {
             limit,
             scores: spectra.iter().map(|spectrum| spectrum.score).collect(),
             noise,
-            has_nedn: nedn.is_some(),
+            has_nedn: told.is_some(),
             detectors: of_detectors,
             sweep: sweep_difference(&signals[0], grid),
             shifts,
+            absolute_shifts,
             basis: fitted.map(|fitted| fitted.basis),
         };
         let expected = sample.excused.iter().filter(|excused| !**excused).count();
@@ -219,20 +229,39 @@ fn spike_scale(sample: &Sample, fitted: Option<&Fitted>, findings: &[Finding]) -
         .collect()
 }
 
-/// The file's noise of a band: of each channel the median over the detectors, as the spectra are
-/// handed on.
-pub fn nedn(granule: &Granule, readings: &BandReadings<'_>, grid: &ScanGrid) -> Option<Vec<f64>> {
-    let noise = readings.band.noise.as_ref()?;
-    let different = if noise.along.is_empty() { 1 } else { grid.detectors };
-    let of_detectors: Vec<Vec<f64>> = (0..different.min(grid.count()))
-        .filter_map(|footprint| granule.noise(readings.number, footprint).ok().flatten())
-        .collect();
-    if of_detectors.is_empty() || readings.in_kelvin() {
-        return None;
+/// The noise that the file gives for a band, as the spectra are handed on.
+pub struct FileNoise {
+    /// Of each channel the median over the detectors.
+    pub channels: Vec<f64>,
+    /// Of each detector what its noise is in units of that: the median over the channels. Empty where
+    /// the file tells all detectors the same.
+    pub detectors: Vec<f64>,
+}
+
+impl FileNoise {
+    /// That of a band, if the file gives it.
+    pub fn of(granule: &Granule, readings: &BandReadings<'_>, grid: &ScanGrid) -> Option<Self> {
+        let noise = readings.band.noise.as_ref()?;
+        let different = if noise.along.is_empty() { 1 } else { grid.detectors };
+        let of_detectors: Vec<Vec<f64>> = (0..different.min(grid.count()))
+            .filter_map(|footprint| granule.noise(readings.number, footprint).ok().flatten())
+            .collect();
+        if of_detectors.is_empty() || readings.in_kelvin() {
+            return None;
+        }
+        let finite = |values: &mut dyn Iterator<Item = f64>| -> f64 {
+            median(&mut values.filter(|value| value.is_finite()).collect::<Vec<_>>())
+        };
+        let channels: Vec<f64> = (0..readings.band.channels())
+            .map(|channel| finite(&mut of_detectors.iter().map(|noise| noise[channel])))
+            .collect();
+        let share = |noise: &Vec<f64>| {
+            finite(&mut noise.iter().zip(&channels).map(|(own, usual)| own / usual))
+        };
+        let mut detectors: Vec<f64> = of_detectors.iter().map(share).collect();
+        if of_detectors.len() < grid.detectors {
+            detectors.clear();
+        }
+        Some(Self { channels, detectors })
     }
-    let of_channel = |channel: usize| {
-        let values = of_detectors.iter().map(|noise| noise[channel]);
-        median(&mut values.filter(|value| value.is_finite()).collect::<Vec<_>>())
-    };
-    Some((0..readings.band.channels()).map(of_channel).collect())
 }

@@ -24,6 +24,8 @@ const SURE: f64 = 5.0;
 pub struct DetectorNumbers {
     /// Its noise over that of the other detectors; NaN where unknown.
     pub noise: f64,
+    /// What the file says of this; 1 where it tells all detectors the same, or nothing.
+    pub told_noise: f64,
     /// Its bias in the band's windows against the others, K; NaN where unknown.
     pub bias: f64,
     /// Standard deviation of the bias, K.
@@ -91,11 +93,13 @@ impl ChannelGroup {
 }
 
 /// The detectors in numbers, and what is wrong with them. `signals`: those of all footprints in the
-/// window, then in the uniform channels.
+/// window, then in the uniform channels; `told`: what the file says of the detectors' noise, empty
+/// where it says nothing.
 pub fn detectors(
     readings: &BandReadings<'_>,
     sample: &Sample,
     fitted: Option<&Fitted>,
+    told: &[f64],
     signals: &[Vec<f64>; 2],
     grid: &ScanGrid,
     limits: &HealthLimits,
@@ -118,8 +122,10 @@ pub fn detectors(
         let ((bias, bias_deviation), (uniform_bias, uniform_deviation)) =
             (in_window[detector], in_uniform[detector]);
         let noise = noise[detector];
+        let told_noise = told.get(detector).copied().filter(|one| *one > 0.0).unwrap_or(1.0);
         numbers.push(DetectorNumbers {
             noise,
+            told_noise,
             bias,
             bias_deviation,
             uniform_bias,
@@ -128,8 +134,13 @@ pub fn detectors(
         if !alive.contains(&detector) {
             continue;
         }
-        if noise > noisy.value {
-            findings.push(noisy.finding(Check::NoisyDetector, subject, band, noise));
+        if noise / told_noise > noisy.value {
+            let finding = noisy.finding(Check::NoisyDetector, subject, band, noise / told_noise);
+            let detail = match told.is_empty() {
+                true => String::new(),
+                false => format!("the file says {told_noise:.2} of the others, found {noise:.2}"),
+            };
+            findings.push(finding.saying(detail));
         }
         let biased = [
             (bias, bias_deviation, "in the band's windows"),

@@ -2,7 +2,7 @@
 
 use rayon::prelude::*;
 
-use super::band_work::{BandWork, nedn};
+use super::band_work::{BandWork, FileNoise};
 use super::examined::Examined;
 use super::finding::{Check, Finding, Limit, Subject};
 use super::grid::ScanGrid;
@@ -70,8 +70,8 @@ fn examine_all(
     let bands: Vec<BandWork<'_>> = readings
         .par_iter()
         .map(|readings| {
-            let nedn = nedn(granule, readings, &grid);
-            BandWork::of(*readings, nedn, saved, &grid, limits)
+            let told = FileNoise::of(granule, readings, &grid);
+            BandWork::of(granule, *readings, told, saved, &grid, limits)
         })
         .collect();
     let mut findings: Vec<Finding> =

@@ -47,8 +47,10 @@ pub struct BandHealth {
     pub detectors: Vec<DetectorNumbers>,
     /// What even positions are warmer than odd ones by, K, and its standard deviation.
     pub sweep: Option<(f64, f64)>,
-    /// Spectral shifts of the detectors, where the band has lines of CO2.
+    /// Spectral shifts of the detectors against their mean, where the band has lines of CO2.
     pub shifts: Vec<DetectorShift>,
+    /// The same against calculated clear spectra, or why there are none.
+    pub absolute_shifts: Result<Vec<DetectorShift>, &'static str>,
 }
 
 /// Where components come from.

@@ -30,8 +30,10 @@ pub enum Check {
     Striping,
     /// A difference between the two directions of the interferometer's sweep.
     Sweep,
-    /// A detector whose wavenumbers are off.
+    /// A detector whose wavenumbers are off from those of the others.
     Shift,
+    /// A detector whose wavenumbers are off from those of calculated spectra.
+    AbsoluteShift,
 }
 
 impl Check {
@@ -56,6 +58,7 @@ impl Check {
             Self::Striping => "striping",
             Self::Sweep => "sweep direction",
             Self::Shift => "spectral shift",
+            Self::AbsoluteShift => "absolute spectral shift",
         }
     }
 
@@ -65,7 +68,7 @@ impl Check {
             Self::DeadChannel => Some("dead"),
             Self::NoisyChannel => Some("noisy"),
             Self::PoppingChannel => Some("popping"),
-            Self::Sweep => None,
+            Self::Sweep | Self::AbsoluteShift => None,
             _ => Some(Self::BAD_SPECTRUM),
         }
     }

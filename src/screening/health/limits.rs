@@ -42,7 +42,7 @@ pub struct HealthLimits {
 #[rustfmt::skip]
 pub const LIMITS: &[LimitKind] = &[
     LimitKind { key: "noisy_channel", meaning: "noise of a channel over that of the file and of its neighbours", unit: "times", default: 2.0, source: "twice the nominal noise over uniform scenes: common practice, from memory", get: |l| &mut l.noisy_channel },
-    LimitKind { key: "popping_step", meaning: "step in the level of one channel between scan lines", unit: "noises", default: 5.0, source: "5 to 6 sigma in one channel only: grating arrays, from memory", get: |l| &mut l.popping_step },
+    LimitKind { key: "popping_step", meaning: "step in the level of one channel from one scan line to the next", unit: "noises", default: 5.0, source: "5 to 6 sigma in one channel only: grating arrays, from memory", get: |l| &mut l.popping_step },
     LimitKind { key: "dead_share", meaning: "share of footprints in which a channel has no value", unit: "1", default: 0.95, source: "common practice", get: |l| &mut l.dead_share },
     LimitKind { key: "dead_signal", meaning: "spread over the footprints, over that of the other detectors or (where the level is senseless) of the neighbours, below which there is no signal", unit: "times", default: 0.1, source: "own choice", get: |l| &mut l.dead_signal },
     LimitKind { key: "spike", meaning: "what single channels stand out by in a footprint", unit: "noises", default: 6.0, source: "T25, 6 NEdN: common practice", get: |l| &mut l.spike },
@@ -50,7 +50,7 @@ pub const LIMITS: &[LimitKind] = &[
     LimitKind { key: "missing_share", meaning: "share of a band's channels without a value in a footprint", unit: "1", default: 0.05, source: "T24, 5 %: common practice", get: |l| &mut l.missing_share },
     LimitKind { key: "missing_stretch", meaning: "neighbouring channels without a value in a footprint", unit: "channels", default: 10.0, source: "own choice: a lost packet, not a bad channel", get: |l| &mut l.missing_stretch },
     LimitKind { key: "noisy_detector", meaning: "noise of a detector in a band over that of the others", unit: "times", default: 2.0, source: "twice the nominal noise: common practice, from memory", get: |l| &mut l.noisy_detector },
-    LimitKind { key: "striping", meaning: "bias of a detector in a band's windows against the others at the same position", unit: "K", default: 0.2, source: "0.1 to 0.2 K over uniform scenes: common practice", get: |l| &mut l.striping },
+    LimitKind { key: "striping", meaning: "bias of a detector against the others at the same position, in a band's windows or in its channels that vary the least", unit: "K", default: 0.2, source: "0.1 to 0.2 K over uniform scenes: common practice", get: |l| &mut l.striping },
     LimitKind { key: "ringing", meaning: "power of the residual at Nyquist over what its noise has there", unit: "times", default: 3.0, source: "3 times what is expected: common practice", get: |l| &mut l.ringing },
     LimitKind { key: "sweep", meaning: "difference between even and odd positions in a band's windows", unit: "K", default: 0.2, source: "sweep directions have differed by up to 0.5 K; limit own choice", get: |l| &mut l.sweep },
     LimitKind { key: "shift", meaning: "spectral shift of a detector", unit: "ppm", default: 10.0, source: "T26: 10 ppm is adequate for weather use, Aumann et al. 2006", get: |l| &mut l.shift },

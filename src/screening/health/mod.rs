@@ -2,6 +2,7 @@
 //!
 //! No judgement here looks at anything but the spectra, and the noise that the file gives.
 
+mod absolute_shift;
 mod band_work;
 mod channels;
 mod detectors;
@@ -10,11 +11,13 @@ mod examined;
 mod finding;
 mod grid;
 mod limits;
+mod popping;
 mod readings;
 mod repeats;
 mod sample;
 mod shift;
 mod spectra;
+mod within_lines;
 
 pub use channels::ChannelNoise;
 pub use detectors::DetectorNumbers;

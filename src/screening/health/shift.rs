@@ -13,16 +13,16 @@ use crate::spectral::{ShiftReference, SpectralShift};
 /// Stretches with lines of CO2 that are known well, cm-1.
 const STRETCHES: [(f64, f64); 3] = [(690.0, 765.0), (2190.0, 2260.0), (2375.0, 2400.0)];
 /// Parts of the granule, along the flight: what the shift differs by between them is its uncertainty.
-const PARTS: usize = 6;
+pub const PARTS: usize = 6;
 /// A shift must be this many times its own uncertainty.
-const SURE: f64 = 4.0;
+pub const SURE: f64 = 4.0;
 
 /// A detector's shift with its uncertainty, ppm.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct DetectorShift {
     /// The detector.
     pub detector: usize,
-    /// Relative to the mean of all detectors.
+    /// Relative to the mean of all detectors, or to what was calculated.
     pub ppm: f64,
     /// The larger of what noise makes and what parts of the granule differ by.
     pub deviation: f64,
@@ -33,8 +33,10 @@ pub struct DetectorShift {
 pub struct Lines {
     /// Places in the band.
     pub channels: Vec<usize>,
-    wavenumbers: Vec<f64>,
-    noise: Vec<f64>,
+    /// Their wavenumbers, cm-1.
+    pub wavenumbers: Vec<f64>,
+    /// Their noise, mW m-2 sr-1 (cm-1)-1.
+    pub noise: Vec<f64>,
     /// Detectors that see something.
     pub alive: Vec<usize>,
 }
@@ -74,6 +76,9 @@ impl LineSums {
 
 /// The shift of each detector that sees something, from the sums of the scan lines.
 pub fn detector_shifts(lines: &Lines, of_scan_lines: &[LineSums]) -> Vec<DetectorShift> {
+    if lines.alive.len() < 2 {
+        return Vec::new();
+    }
     let parts: Vec<LineSums> = (0..PARTS)
         .map(|part| {
             let count = of_scan_lines.len();
@@ -135,8 +140,7 @@ pub fn shifted_detectors(
 }
 
 impl Lines {
-    /// The first stretch of which a band has enough channels without a gap; none where there is but
-    /// one detector.
+    /// The first stretch of which a band has enough channels without a gap.
     pub fn of(sample: &Sample, fitted: &Fitted, grid: &ScanGrid) -> Option<Self> {
         let rows = &sample.rows;
         let alive: Vec<usize> =
@@ -157,7 +161,7 @@ impl Lines {
             }
             (best.len() >= FEWEST_CHANNELS).then_some(best)
         });
-        let found = found.filter(|_| alive.len() > 1)?;
+        let found = found?;
         Some(Self {
             channels: rows.channels[found.clone()].to_vec(),
             wavenumbers: rows.wavenumbers[found.clone()].to_vec(),
@@ -170,7 +174,7 @@ impl Lines {
 /// Channels that a shift needs, margins included.
 const FEWEST_CHANNELS: usize = 48;
 
-fn deviation_of_mean(values: &[f64]) -> f64 {
+pub fn deviation_of_mean(values: &[f64]) -> f64 {
     let count = values.len() as f64;
     if count < 2.0 {
         return 0.0;

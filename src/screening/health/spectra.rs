@@ -141,7 +141,8 @@ impl SpectraCheck<'_> {
         position: &mut Vec<f64>,
         sums: &mut LineSums,
     ) {
-        let Some(lines) = self.lines else { return };
+        // One detector is compared with no other.
+        let Some(lines) = self.lines.filter(|lines| lines.alive.len() > 1) else { return };
         let detector = grid.detector(offset);
         if detector == 0 {
             position.clear();

@@ -1,5 +1,9 @@
 //! What spectra of one band are made of: mean, noise, principal components, and how well they fit.
 
+use rayon::prelude::*;
+
+use super::fit::Rows;
+
 /// The components of a band, and how well they rebuild the spectra that they were found in.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Basis {
@@ -116,6 +120,23 @@ impl Basis {
             missing.iter().for_each(|at| filled[*at] -= rest[*at]);
         }
         Some((filled, missing))
+    }
+
+    /// What lies along each component of rows that have all its channels, in noise units: for each row one
+    /// number for each component.
+    pub fn along(&self, rows: &Rows) -> Vec<Vec<f64>> {
+        let place = |channel: &usize| rows.channels.iter().position(|one| one == channel);
+        let places: Vec<usize> = self.channels.iter().filter_map(place).collect();
+        let of_row = |row: &[f64]| {
+            let values = places.iter().zip(self.mean.iter().zip(&self.noise));
+            let normal: Vec<f64> =
+                values.map(|(place, (mean, noise))| (row[*place] - mean) / noise).collect();
+            let along = |number| -> f64 {
+                self.component(number).iter().zip(&normal).map(|(a, b)| a * b).sum()
+            };
+            (0..self.components()).map(along).collect()
+        };
+        rows.radiances.par_chunks_exact(rows.channels.len().max(1)).map(of_row).collect()
     }
 
     /// The same components seen through fewer channels (places in the band): what is left of them is
