@@ -103,9 +103,10 @@ fn every_planted_defect_is_found_and_sound_spectra_are_left_alone() {
     // 25 ppm off in one detector of four are 18.75 ppm off the mean of the four.
     assert!((value("spectral shift", 3) - 18.75).abs() < 2.0);
     assert!((value("noisy detector", 0) - 3.0).abs() < 0.3);
-    // 0.7 K at 250 K; the scene is warmer, where the same radiance is less of a temperature.
+    // 0.7 K at 250 K; the channels that vary the least are colder, where the same radiance is more of a
+    // temperature: twice as much for 225 K near 1600 cm-1.
     let striping = value("striping", 2);
-    assert!(striping > 0.25 && striping < 0.8, "{striping}");
+    assert!(striping > 0.7 && striping < 1.8, "{striping}");
     assert!(findings(&found, "ringing").count() > 0);
 
     let basis = &found["instrument"]["bands"][0]["basis"];
