@@ -330,10 +330,35 @@ impl Names for GranuleNames<'_> {
 
 /// The unit of a variable, as far as layers follow units.
 fn unit_of(text: &str) -> LayerUnit {
-    match text.trim() {
-        "K" | "kelvin" => LayerUnit::Kelvin,
-        "1" => LayerUnit::One,
-        text if text.starts_with("degree") && !text.contains(['C', 'F']) => LayerUnit::Degree,
+    let text = text.trim().to_ascii_lowercase();
+    let degrees = ["degrees", "degree"].iter().find_map(|word| text.strip_prefix(word));
+    let of_what = degrees.map(|rest| rest.trim_start_matches(['_', ' ']));
+    match (text.as_str(), of_what) {
+        ("k" | "kelvin", _) | (_, Some("k" | "kelvin")) => LayerUnit::Kelvin,
+        ("1", _) => LayerUnit::One,
+        // Layers do not convert degrees Celsius and Fahrenheit.
+        (_, Some(rest)) if !rest.starts_with(['c', 'f']) => LayerUnit::Degree,
         _ => LayerUnit::Unknown,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn units_are_known_by_the_names_that_files_give_them() {
+        for (text, unit) in [
+            ("K", LayerUnit::Kelvin),
+            ("degree_Kelvin", LayerUnit::Kelvin),
+            ("degrees kelvin", LayerUnit::Kelvin),
+            ("degrees_north", LayerUnit::Degree),
+            ("degree", LayerUnit::Degree),
+            ("degree_Celsius", LayerUnit::Unknown),
+            ("degrees celsius", LayerUnit::Unknown),
+            ("1", LayerUnit::One),
+        ] {
+            assert_eq!(unit_of(text), unit, "{text}");
+        }
     }
 }

@@ -50,6 +50,8 @@ impl LayerUnit {
             (Kelvin, Kelvin | KelvinDifference | One) => Kelvin,
             (KelvinDifference, One) => KelvinDifference,
             (KelvinDifference | One, Kelvin) if !subtracted => Kelvin,
+            // A number from which a temperature is taken is one itself.
+            (One, Kelvin) => KelvinDifference,
             (One, unit) => unit,
             (unit, One) => unit,
             (unit, other) if unit == other => unit,
@@ -131,6 +133,8 @@ mod tests {
     fn temperatures_and_their_differences_are_told_apart() {
         assert_eq!(Kelvin.of_sum(Kelvin, true), KelvinDifference);
         assert_eq!(Kelvin.of_sum(KelvinDifference, true), Kelvin);
+        assert_eq!(One.of_sum(Kelvin, true), KelvinDifference, "300 - bt(900)");
+        assert_eq!(Kelvin.of_sum(One, true), Kelvin, "bt(900) - 3");
         assert_eq!(KelvinDifference.of_sum(KelvinDifference, false), KelvinDifference);
         assert_eq!(KelvinDifference.of_sum(Kelvin, true), Unknown);
         assert_eq!(Kelvin.of_spread(), KelvinDifference);

@@ -5,6 +5,7 @@ use super::spectrum::BandSpectrum;
 use crate::flags::FootprintSet;
 use crate::granule::{GranuleError, Quantity};
 use crate::spectral::planck;
+use crate::system::Cancel;
 
 /// Quartiles of more footprints than this are those of so many, evenly taken: they would not differ
 /// on any screen, and all values of all channels would have to be held at once.
@@ -40,8 +41,12 @@ impl Review {
     /// missing in all six.
     ///
     /// # Errors
-    /// The file can't be read.
-    pub fn many_spectra(&self, footprints: &FootprintSet) -> Result<ManySpectra, GranuleError> {
+    /// The file can't be read, or it was cancelled.
+    pub fn many_spectra(
+        &self,
+        footprints: &FootprintSet,
+        cancel: &Cancel,
+    ) -> Result<ManySpectra, GranuleError> {
         let count = footprints.len();
         let step = count.div_ceil(MOST_FOR_QUARTILES).max(1);
         let mut levels: [Vec<BandSpectrum>; 5] = Default::default();
@@ -49,7 +54,7 @@ impl Review {
         for (number, band) in self.granule().bands().iter().enumerate() {
             let wavenumbers = band.axis.wavenumbers();
             let of = |radiances: Vec<f64>| BandSpectrum::of_radiances(wavenumbers, radiances);
-            let gathered = self.gather(number, footprints, step)?;
+            let gathered = self.gather(number, footprints, step, cancel)?;
             let [lower, median, upper] = quartiles(&gathered.sampled, wavenumbers.len());
             let five = [gathered.lowest, lower, median, upper, gathered.highest];
             for (level, radiances) in levels.iter_mut().zip(five) {
@@ -67,6 +72,7 @@ impl Review {
         band: usize,
         footprints: &FootprintSet,
         step: usize,
+        cancel: &Cancel,
     ) -> Result<Gathered, GranuleError> {
         let here = &self.granule().bands()[band];
         let channels = here.axis.wavenumbers().len();
@@ -79,6 +85,9 @@ impl Review {
         };
         let mut values = Vec::new();
         for (turn, footprint) in footprints.iter().enumerate() {
+            if cancel.is_cancelled() {
+                return Err(GranuleError::Cancelled);
+            }
             // Read with those beside it where it is not in memory.
             self.granule().values(band, footprint, None, &mut values)?;
             if matches!(here.quantity, Quantity::BrightnessTemperature(_)) {

@@ -122,6 +122,7 @@ fn opened(app: &mut App, request: u64, found: Result<Arc<Review>, String>) -> Ve
     let problems = bench.review.granule().problems().len();
     let bases = bench.review.bases_problem().map(crate::system::clean_text);
     app.table = Table::Bench(Box::new(bench));
+    strip::fit(app);
     match problems {
         // Why files before this one were passed over has to stay to be read.
         _ if app.message.1 == Tone::Bad => {}

@@ -144,6 +144,8 @@ pub struct Overtaken {
     pub against: Cancel,
     /// Measuring the spectra.
     pub measured: Cancel,
+    /// What the Trace shows beside the spectrum.
+    pub trace: Cancel,
 }
 
 impl Overtaken {
@@ -154,6 +156,7 @@ impl Overtaken {
         self.alike.cancel();
         self.against.cancel();
         self.measured.cancel();
+        self.trace.cancel();
     }
 }
 

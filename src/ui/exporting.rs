@@ -14,6 +14,7 @@ use super::jobs::Job;
 use super::looking::no_granule;
 use super::owed;
 use super::turning;
+use super::typed_path::typed_path;
 
 /// An export that waits for the disk.
 pub struct Waiting {
@@ -32,7 +33,7 @@ impl Waiting {
 
 /// Exports the mask of the granule on the table, into `folder` or the campaign's own.
 pub fn export(app: &mut App, folder: Option<String>) -> Vec<Job> {
-    let folder = folder.map_or_else(|| app.export_folder(), PathBuf::from);
+    let folder = folder.map_or_else(|| app.export_folder(), |folder| typed_path(&folder));
     let Some(bench) = app.bench() else { return no_granule(app) };
     let Some(record) = bench.record.open() else { return deciding::not_ready(app) };
     let hash = record.identity().hash.clone();

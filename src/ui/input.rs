@@ -164,6 +164,10 @@ fn control_sequence(bytes: &[u8], parameters: &[u8]) -> Step {
         };
     };
     let used = end + 3;
+    // The old mouse report, which a terminal may send unasked: three bytes follow.
+    if parameters.first() == Some(&b'M') {
+        return if bytes.len() < used + 3 { Step::Unfinished } else { Step::Nothing(used + 3) };
+    }
     if bytes.starts_with(PASTE_START) {
         return Step::Paste;
     }
@@ -324,6 +328,14 @@ mod tests {
                 Input::Key(Key::char('z')),
             ]
         );
+    }
+
+    #[test]
+    fn an_old_mouse_report_is_no_key() {
+        assert_eq!(keys(b"\x1b[M !!q"), ["q"]);
+        let mut parser = InputParser::default();
+        assert!(parser.feed(b"\x1b[M ").is_empty() && parser.is_waiting());
+        assert_eq!(parser.feed(b"!!q"), [Input::Key(Key::char('q'))]);
     }
 
     #[test]

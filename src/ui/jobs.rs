@@ -181,6 +181,8 @@ pub enum Job {
         review: Arc<Review>,
         /// What is asked for.
         ask: TraceAsk,
+        /// Ends it early.
+        cancel: Cancel,
     },
     /// Read what the Trace shows beside a footprint's spectrum: noise, calculated spectrum.
     Beside {

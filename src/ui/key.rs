@@ -95,6 +95,22 @@ impl Key {
         Some(key)
     }
 
+    /// Whether a terminal tells of this key at all: some of them send the byte of another key.
+    pub fn arrives(&self) -> bool {
+        match self.code {
+            Code::Char(_) if self.alt => false,
+            Code::Char(letter) if self.control => {
+                // These are Backspace, Tab and Enter twice.
+                let bytes = letter.is_ascii_lowercase() && !"hijm".contains(letter);
+                bytes || matches!(letter, ' ' | '4'..='7')
+            }
+            Code::Enter | Code::Esc | Code::Tab | Code::Backspace => {
+                !self.alt && !self.control && !self.shift
+            }
+            _ => true,
+        }
+    }
+
     /// A key with Shift.
     pub const fn shifted(code: Code) -> Key {
         Key { code, control: false, alt: false, shift: true }
@@ -175,5 +191,15 @@ mod tests {
             assert_eq!(Key::named(name), None, "{name}");
         }
         assert_eq!(Key::named("Ctrl-r"), Some(Key::control('r')));
+    }
+
+    #[test]
+    fn keys_that_terminals_do_not_tell_of_are_known() {
+        for name in ["Alt-x", "Ctrl-I", "Ctrl-M", "Ctrl-J", "Ctrl-H", "Ctrl-1", "Shift-Enter"] {
+            assert!(!Key::named(name).unwrap().arrives(), "{name}");
+        }
+        for name in ["x", "Ctrl-R", "Alt-Left", "Ctrl-Left", "F5", "Shift-Tab", "Space", "Enter"] {
+            assert!(Key::named(name).unwrap().arrives(), "{name}");
+        }
     }
 }

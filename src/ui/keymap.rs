@@ -57,6 +57,13 @@ impl Keymap {
                 ));
                 continue;
             };
+            if !key.arrives() {
+                let (place, action) = (&setting.place, &setting.action);
+                self.problems.push(format!(
+                    "{place}: {key} for {action} cannot be told by terminals from another key"
+                ));
+                continue;
+            }
             let other = self.keys.iter().position(|keys| keys.contains(&key));
             let Some(other) = other.filter(|other| *other != row) else {
                 found.push(key);
@@ -177,6 +184,7 @@ mod tests {
             ("undo = 'Hyper-X'", "line 2: \"Hyper-X\" for undo is no key"),
             ("undo = 'U'\nredo = 'U'", "line 3: U is undo already (settings.toml, line 2)"),
             ("undo = 'q'", "line 2: q stays quit"),
+            ("undo = 'Alt-x'", "line 2: Alt-x for undo cannot be told"),
             ("undo = 'x'", "pin has no key left; :pin still does it"),
         ] {
             let map = map(&format!("[keys]\n{text}\n"));

@@ -205,9 +205,12 @@ pub fn pins(app: &mut App, action: Action) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     if action == Action::Unpin {
         bench.pins.clear();
+        bench.drop_lost_reference();
         return Vec::new();
     }
-    if !bench.pin(bench.cursor) {
+    let pinned = bench.pin(bench.cursor);
+    bench.drop_lost_reference();
+    if !pinned {
         let key = app.keymap.hint(Action::Unpin);
         app.warn(format!("{MOST_PINS} are pinned already; {key} takes all pins off"));
     }

@@ -67,6 +67,7 @@ mod tracing;
 #[cfg(test)]
 mod trial;
 mod turning;
+mod typed_path;
 mod typing;
 mod undoing;
 mod update;

@@ -87,8 +87,7 @@ fn in_evidence(app: &mut App, action: Action) -> bool {
         _ => return false,
     };
     // A page beyond the end would have to be taken back unseen.
-    let rows = views::evidence_rows(app).len();
-    app.evidence_scroll = app.evidence_scroll.min(rows);
+    app.evidence_scroll = app.evidence_scroll.min(views::last_evidence_scroll(app));
     true
 }
 
@@ -109,6 +108,10 @@ fn page(app: &App) -> isize {
 
 /// A click puts the cursor there and gives the pane the keys; the wheel zooms the spectrum.
 pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
+    // Wherever the button comes up, what was drawn with it ends.
+    if mouse.button == Button::Release {
+        return picking::mouse_up(app);
+    }
     let layout = app.layout.as_ref();
     let Some(pane) = layout.and_then(|layout| layout.pane_at(mouse.column, mouse.row)) else {
         return Vec::new();
@@ -133,7 +136,6 @@ pub fn click(app: &mut App, mouse: Mouse) -> Vec<Job> {
                 None => Vec::new(),
             }
         }
-        (Button::Release, Pane::Field | Pane::Spread) => picking::mouse_up(app),
         (Button::Press, Pane::Tray) => click_in_tray(app, mouse),
         (Button::Press | Button::Drag, Pane::Trace) => {
             app.panes.focus_on(Pane::Trace);

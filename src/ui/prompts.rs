@@ -45,8 +45,7 @@ pub fn press(app: &mut App, key: Key) -> Vec<Job> {
             scrolled(app, key, scroll, lines, Overlay::Help)
         }
         Overlay::Problems(scroll) => {
-            // A message takes one line or two, and as many for what to do about it.
-            let lines = views::problem_rows(app).len() * 3;
+            let lines = views::last_problem_scroll(app);
             scrolled(app, key, scroll, lines, Overlay::Problems)
         }
         Overlay::Line(prompt) if escape => typing::give_up(app, &prompt),

@@ -3,7 +3,7 @@
 use std::io;
 use std::sync::Arc;
 use std::sync::mpsc::{Receiver, RecvTimeoutError, channel};
-use std::time::Duration;
+use std::time::{Duration, Instant};
 
 use super::app::App;
 use super::draw::{draw, draw_over};
@@ -20,7 +20,7 @@ const LEDGER_PAUSE: Duration = Duration::from_millis(15);
 const QUIET: Duration = Duration::from_secs(10);
 /// While work goes on beside the keys, how far it is is drawn anew so often.
 const WORK_PAUSE: Duration = Duration::from_millis(250);
-/// Where little is to be sent the cursor rests after so long without an event: longer than a key that
+/// Where little is to be sent the cursor rests after so long without a key: longer than one that
 /// is held down takes to come again.
 const REST: Duration = Duration::from_millis(150);
 /// How long the last decisions may take on the way out after a signal.
@@ -49,14 +49,17 @@ pub fn run(mut app: App) -> io::Result<Ended> {
     for job in turning::start(&mut app) {
         runner.start(job);
     }
+    let mut heard = Instant::now();
     while app.ended.is_none() {
         if show(&mut app, &mut screen).is_err() {
             app.end(Ending::TerminalGone);
             break;
         }
-        let Some(event) = next_event(&app, &events) else { continue };
+        let Some(event) = next_event(&app, &events, heard) else { continue };
+        heard = if is_input(&event) { Instant::now() } else { heard };
         handle(&mut app, &mut screen, &mut runner, event);
         while let Ok(event) = events.try_recv() {
+            heard = if is_input(&event) { Instant::now() } else { heard };
             handle(&mut app, &mut screen, &mut runner, event);
         }
         // Under a stream of keys no pause comes in which the writer would be asked.
@@ -69,10 +72,16 @@ pub fn run(mut app: App) -> io::Result<Ended> {
 }
 
 /// Waits for the next event. While decisions are pending the writer may have news at any moment.
-fn next_event(app: &App, events: &Receiver<Event>) -> Option<Event> {
+/// Whether the cursor rests goes by the last key alone: work beside the keys tells of itself all the
+/// time.
+fn next_event(app: &App, events: &Receiver<Event>, heard: Instant) -> Option<Event> {
+    let rest = REST.saturating_sub(heard.elapsed());
+    if !app.rested && rest.is_zero() {
+        return Some(Event::Rested);
+    }
     let writing = app.pending() > 0 && (app.write_failure().is_none() || app.leaving);
     let (pause, passed) = match (app.rested, writing) {
-        (false, _) => (REST, Event::Rested),
+        (false, _) => (rest, Event::Rested),
         (true, true) => (LEDGER_PAUSE, Event::LedgerMoved),
         (true, false) if app.is_working() => (WORK_PAUSE, Event::Working),
         (true, false) => (QUIET, Event::Quiet),
@@ -94,6 +103,10 @@ fn handle(app: &mut App, screen: &mut Screen, runner: &mut Runner, event: Event)
         // A terminal that is gone shows itself at the next drawing.
         let _ = screen.set_mouse(reports(app));
     }
+}
+
+fn is_input(event: &Event) -> bool {
+    matches!(event, Event::Input(input) if !input.is_hover())
 }
 
 /// Whether `update` says itself that something changed: the ledgers may have no news, and what the mouse

@@ -98,8 +98,9 @@ impl ShownLayer {
         };
         let diverges = match range {
             RangeChoice::AroundZero => true,
-            // A range that is the same to both sides was meant to.
-            RangeChoice::Fixed(low, high) if low == -high => true,
+            // A range that is the same to both sides was meant to; the middle of any other is not
+            // zero, and colours of a difference would lie.
+            RangeChoice::Fixed(low, high) => low == -high,
             _ => self.difference && both_signs(),
         };
         let palette = if diverges { Palette::Vik } else { Palette::default() };
@@ -163,6 +164,12 @@ mod tests {
         assert_eq!((centred.scale.low, centred.scale.high), (-4.0, 4.0));
         assert!(centred.scale.palette.is_diverging());
         assert!(!layer(vec![0.5, 4.0], true).scale.palette.is_diverging());
+        for (low, high) in [(-2.0, 10.0), (-5.0, 5.0)] {
+            let mut fixed = layer(vec![-1.0, 0.0, 4.0], true);
+            fixed.set_range(RangeChoice::Fixed(low, high));
+            assert_eq!((fixed.scale.low, fixed.scale.high), (low, high));
+            assert_eq!(fixed.scale.palette.is_diverging(), low == -high, "grey is zero or nothing");
+        }
     }
 
     #[test]

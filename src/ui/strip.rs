@@ -98,6 +98,13 @@ pub fn turn(app: &mut App) -> Vec<Job> {
     refresh(app)
 }
 
+/// A granule comes on the table: of fewer dimensions, the Strip lies along its last.
+pub fn fit(app: &mut App) {
+    if let Along::Dimension(number) = app.strip.along {
+        app.strip.along = Along::Dimension(number.min(dimensions(app).saturating_sub(1)));
+    }
+}
+
 fn dimensions(app: &App) -> usize {
     app.bench().map_or(0, |bench| bench.review.granule().footprints().lengths().len())
 }

@@ -143,6 +143,15 @@ impl Bench {
         }
     }
 
+    /// Differences to a pin that was taken off end: another pin of its letter is another spectrum.
+    pub fn drop_lost_reference(&mut self) {
+        if let Some(Reference::Pin(letter)) = self.look.reference
+            && !self.pins.iter().any(|pin| pin.letter == letter)
+        {
+            self.look.reference = None;
+        }
+    }
+
     /// Whether a model's spectra are there for any band.
     pub fn has_calculated(&self) -> bool {
         let granule = self.review.granule();

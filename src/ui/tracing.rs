@@ -1,15 +1,15 @@
 //! What keys and commands do to the Trace beyond channels and zoom: quantity, reference, envelope,
 //! Planck curves, noise.
 
-use std::path::PathBuf;
 use std::sync::Arc;
 
 use super::app::App;
-use super::bench::Bench;
+use super::bench::{Bench, overtake};
 use super::jobs::{Job, TraceAsk, TraceFound};
 use super::keys::Action;
 use super::looking::no_granule;
 use super::trace_look::{Envelope, Reference, TraceQuantity, USUAL_PLANCK};
+use super::typed_path::typed_path;
 
 /// Changes what the Trace shows.
 pub fn act(app: &mut App, action: Action) -> Vec<Job> {
@@ -50,7 +50,7 @@ pub fn planck(app: &mut App, temperatures: Vec<f64>) -> Vec<Job> {
 
 /// Reads a spectrum out of a file to compare with.
 pub fn reference_file(app: &mut App, path: &str) -> Vec<Job> {
-    ask(app, TraceAsk::File(PathBuf::from(path)))
+    ask(app, TraceAsk::File(typed_path(path)))
 }
 
 fn next_reference(app: &mut App) -> Vec<Job> {
@@ -114,12 +114,14 @@ pub fn beside(app: &mut App) -> Vec<Job> {
     let known = bench.look.beside.as_ref().is_some_and(|one| one.footprint == bench.cursor);
     let bars = bench.look.bars && bench.has_noise();
     let calculated = bench.look.reference == Some(Reference::Calculated);
-    if known || !(bars || calculated) {
-        return Vec::new();
-    }
     let footprint = bench.cursor;
     let request = app.request();
     let Some(bench) = app.bench_mut() else { return Vec::new() };
+    // What was asked for about another footprint would take the place of what is known.
+    bench.awaited.beside = 0;
+    if known || !(bars || calculated) {
+        return Vec::new();
+    }
     bench.awaited.beside = request;
     vec![Job::Beside { request, review: Arc::clone(&bench.review), footprint }]
 }
@@ -133,7 +135,19 @@ fn ask(app: &mut App, ask: TraceAsk) -> Vec<Job> {
     let request = app.request();
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     bench.awaited.trace = request;
-    vec![Job::Trace { request, review: Arc::clone(&bench.review), ask }]
+    let cancel = overtake(&mut bench.overtaken.trace);
+    vec![Job::Trace { request, review: Arc::clone(&bench.review), ask, cancel }]
+}
+
+/// Waits for what was asked for no longer; false where nothing was.
+pub fn give_up(app: &mut App) -> bool {
+    let Some(bench) = app.bench_mut().filter(|bench| bench.awaited.trace != 0) else {
+        return false;
+    };
+    bench.awaited.trace = 0;
+    bench.overtaken.trace.cancel();
+    app.say("given up");
+    true
 }
 
 /// Takes what was asked for.

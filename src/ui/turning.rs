@@ -157,6 +157,7 @@ fn put_away(app: &mut App) {
     bench.filling.cancel.cancel();
     bench.tests.cancel.cancel();
     bench.overtaken.end_all();
+    bench.selecting.seeking.cancel();
     // Comparing is about a footprint of it; what is being decided goes on.
     across::end_looking(app);
     let own = bench.record.open().map(|record| Standing {
@@ -244,6 +245,10 @@ pub fn ledger_moved(app: &mut App) -> Vec<Job> {
 pub fn look_for_others(app: &mut App) -> Vec<Job> {
     let request = app.request();
     let Some(bench) = app.bench_mut() else { return Vec::new() };
+    // One that hangs on a disk is enough.
+    if bench.awaited.reread != 0 {
+        return Vec::new();
+    }
     let Some(record) = bench.record.open() else { return Vec::new() };
     let identity = record.identity().clone();
     bench.awaited.reread = request;

@@ -18,13 +18,16 @@ use super::side::Side;
 use super::spreading;
 use super::tracing;
 use super::update::act;
+use super::widgets::short;
 
 /// Asks for one side of a value, beginning with the value under the cursor.
 pub fn open_side(app: &mut App) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return looking::no_granule(app) };
     let text = match (bench.side(), bench.layer.value(bench.cursor)) {
         (Some(side), _) => format!("{} {}", side.relation.symbol(), side.value),
-        (None, Some(value)) => format!("< {value:.2}"),
+        // Of small values two decimals would be nothing.
+        (None, Some(value)) if value == 0.0 || value.abs() >= 1.0 => format!("< {value:.2}"),
+        (None, Some(value)) => format!("< {}", short(value)),
         (None, None) => "< ".to_owned(),
     };
     bench.set_side(Side::parse(&text).ok());

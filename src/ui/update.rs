@@ -2,6 +2,7 @@
 
 use super::app::{App, Table};
 use super::bench::Bench;
+use super::colour::Tone;
 use super::event::{Button, Event, Input, Mouse};
 use super::jobs::Job;
 use super::key::{Code, Key};
@@ -221,7 +222,13 @@ fn cancel(app: &mut App) -> Vec<Job> {
     if across::give_up(app) {
         return Vec::new();
     }
-    let dropped = picking::give_up(app) || app.bench_mut().is_some_and(let_go);
+    let given_up = picking::give_up(app);
+    let let_go = !given_up && app.bench_mut().is_some_and(let_go);
+    if let_go && app.message.1 != Tone::Bad {
+        // It told of what is let go now.
+        app.say("");
+    }
+    let dropped = given_up || let_go;
     if matches!(app.table, Table::Opening { .. }) {
         turning::give_up_opening(app);
     } else if !dropped && app.panes.is_zoomed() {
@@ -229,6 +236,7 @@ fn cancel(app: &mut App) -> Vec<Job> {
     } else if !dropped
         && !spreading::give_up(app)
         && !doubting::give_up(app)
+        && !tracing::give_up(app)
         && !screening::give_up(app)
         && !strip::give_up(app)
     {

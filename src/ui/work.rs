@@ -1,5 +1,6 @@
 //! What each job does, on whatever thread it runs.
 
+use std::io::Read;
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::time::{Duration, Instant};
@@ -122,8 +123,8 @@ pub fn perform(job: &Job, outside: &Outside, send: &(dyn Fn(Answer) + Sync)) {
             let found = footprints.iter().filter_map(read).collect();
             send(Answer::Pinned { request: *request, found });
         }
-        Job::Trace { request, review, ask } => {
-            send(Answer::Trace { request: *request, found: trace(review, ask) });
+        Job::Trace { request, review, ask, cancel } => {
+            send(Answer::Trace { request: *request, found: trace(review, ask, cancel) });
         }
         Job::Along { request, text, paths, cancel } => {
             let open = |path: &PathBuf| {
@@ -206,28 +207,41 @@ fn beside(review: &Review, footprint: usize) -> Beside {
 /// A spectrum in a file is a few thousand lines; a longer file is a mistake.
 const LONGEST_REFERENCE: u64 = 16 << 20;
 
-fn trace(review: &Review, ask: &TraceAsk) -> Result<TraceFound, String> {
+fn trace(review: &Review, ask: &TraceAsk, cancel: &Cancel) -> Result<TraceFound, String> {
     match ask {
         TraceAsk::Mean => {
             let all = (0..review.granule().footprints().count()).collect();
-            review.many_spectra(&all).map(TraceFound::Mean).map_err(in_words)
+            review.many_spectra(&all, cancel).map(TraceFound::Mean).map_err(in_words)
         }
         TraceAsk::Envelope(footprints, words) => {
-            let found = review.many_spectra(footprints).map_err(in_words)?;
+            let found = review.many_spectra(footprints, cancel).map_err(in_words)?;
             Ok(TraceFound::Envelope(found, words.clone()))
         }
         TraceAsk::File(path) => {
             let name = clean_text(&path.file_name().unwrap_or_default().to_string_lossy());
             let why = |why: String| format!("{name} is no reference: {why}");
-            let size = std::fs::metadata(path).map_err(|error| why(error.to_string()))?.len();
-            if size > LONGEST_REFERENCE {
-                return Err(why("it is too long for one spectrum".to_owned()));
-            }
-            let text = std::fs::read_to_string(path).map_err(|error| why(error.to_string()))?;
+            let text = reference_text(path).map_err(why)?;
             let reference = ReferenceSpectrum::from_csv(&text).map_err(why)?;
             Ok(TraceFound::File(ReferenceFile { name, bands: review.on_channels(&reference) }))
         }
     }
+}
+
+/// The text of a file that may hold a spectrum; one that has no end, or of which nobody writes the
+/// other end, would never be read.
+fn reference_text(path: &Path) -> Result<String, String> {
+    let found = std::fs::metadata(path).map_err(|error| error.to_string())?;
+    if !found.is_file() {
+        return Err("it is not a file of text".to_owned());
+    }
+    let file = std::fs::File::open(path).map_err(|error| error.to_string())?;
+    let mut text = String::new();
+    let read = file.take(LONGEST_REFERENCE + 1).read_to_string(&mut text);
+    read.map_err(|error| error.to_string())?;
+    if text.len() as u64 > LONGEST_REFERENCE {
+        return Err("it is too long for one spectrum".to_owned());
+    }
+    Ok(text)
 }
 
 pub fn in_words(error: GranuleError) -> String {

@@ -6,7 +6,9 @@ use super::one_granule;
 use crate::ui::event::{Button, Event, Input, Mouse};
 use crate::ui::jobs::Job;
 use crate::ui::panes::Pane;
-use crate::ui::trial::{POSITIONS, Place};
+use crate::ui::trace_look::Reference;
+use crate::ui::trial::{POSITIONS, Place, Trial};
+use crate::ui::views;
 
 #[test]
 fn layers_by_key_by_command_and_by_channel() {
@@ -277,4 +279,55 @@ fn what_the_mouse_is_over_is_told_in_words_until_a_key_is_pressed() {
     trial.app.changed = false;
     trial.event(Event::Input(Input::Mouse(Mouse { row: area.y + 5, ..over })));
     assert!(!trial.app.changed);
+}
+
+#[test]
+fn the_end_of_the_evidence_is_reached_and_left_at_once() {
+    let (_place, mut trial) = one_granule();
+    trial.screen(80, 24);
+    trial.keys("6 z");
+    trial.screen(80, 24);
+    (0..60).for_each(|_| {
+        trial.keys("PageDown");
+    });
+    let end = trial.screen(80, 24);
+    assert!(end.contains("longitude") || end.contains("azimuth"), "{end}");
+    trial.keys("PageUp");
+    assert_ne!(trial.screen(80, 24), end);
+}
+
+#[test]
+fn marks_that_are_off_leave_the_map_where_it_is() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("2 z G i");
+    trial.screen(80, 24);
+    let area = trial.app.area_of(Pane::Field).unwrap();
+    let under = |trial: &Trial| -> Vec<Option<usize>> {
+        area.positions().map(|cell| views::footprint_under(&trial.app, cell.x, cell.y)).collect()
+    };
+    let before = under(&trial);
+    trial.keys("Y");
+    assert_eq!(under(&trial), before);
+    trial.keys("#");
+    assert!(trial.screen(80, 24).contains("signs: tests"), "{}", trial.screen(80, 24));
+}
+
+#[test]
+fn what_is_known_beside_a_spectrum_is_not_replaced_by_what_comes_late() {
+    let (_place, mut trial) = one_granule();
+    trial.app.bench_mut().unwrap().look.reference = Some(Reference::Calculated);
+    trial.keys("Right");
+    ["Right", "Left"].iter().for_each(|key| trial.press(key));
+    trial.settle();
+    let beside = trial.bench().look.beside.as_ref().map(|beside| beside.footprint);
+    assert_eq!((trial.bench().cursor, beside), (1, Some(1)));
+}
+
+#[test]
+fn differences_to_a_pin_end_with_it() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("x Right d d");
+    assert_eq!(trial.bench().look.reference, Some(Reference::Pin('a')));
+    trial.keys("X");
+    assert_eq!(trial.bench().look.reference, None);
 }

@@ -137,6 +137,39 @@ fn the_mouse_draws_boxes_and_polygons() {
 }
 
 #[test]
+fn a_box_ends_wherever_the_button_comes_up() {
+    let (_place, mut trial) = one_granule();
+    trial.keys("m");
+    let area = trial.app.area_of(Pane::Field).unwrap();
+    let cells: Vec<(u16, u16)> = area.positions().map(|cell| (cell.x, cell.y)).collect();
+    let cell = |footprint: usize, trial: &Trial| {
+        let under = |(x, y)| views::footprint_under(&trial.app, x, y) == Some(footprint);
+        cells.iter().copied().find(|cell| under(*cell)).unwrap()
+    };
+    let strip = trial.app.area_of(Pane::Evidence).or(trial.app.area_of(Pane::Trace)).unwrap();
+    for (button, (column, row)) in [
+        (Button::Press, cell(1, &trial)),
+        (Button::Drag, cell(8, &trial)),
+        (Button::Release, (strip.x + 1, strip.y + 1)),
+    ] {
+        trial.event(Event::Input(Input::Mouse(Mouse { button, column, row })));
+    }
+    assert!(trial.bench().selecting.shape.is_none());
+    assert_eq!(selected(&trial), [1, 2, 7, 8]);
+}
+
+#[test]
+fn what_is_let_go_is_told_of_no_longer_and_small_values_are_offered_as_they_are() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":select bt(900) < 252.5").keys("Enter");
+    assert_eq!(trial.message(), "3 of 30 selected");
+    trial.keys("Esc");
+    assert_eq!(trial.message(), "");
+    trial.types(":layer lat / 4000").keys("Enter t");
+    assert!(trial.screen(80, 24).contains("< 0.0025"), "{}", trial.screen(80, 24));
+}
+
+#[test]
 fn conditions_flags_and_tests_select() {
     let (_place, mut trial) = one_granule();
     for (typed, expected) in [

@@ -1,7 +1,7 @@
 //! The spot check: start state, keys, expected. Plain by the rulebook of the trial are the cloudy
 //! footprints 0 to 8, the dusty ones 26 to 29, and 12 to 24 without a flag.
 
-use super::screening::place;
+use super::screening::{place, screen};
 use crate::flags::Act;
 use crate::ui::trial::{Place, Trial};
 
@@ -59,6 +59,19 @@ fn a_sample_is_judged_without_the_verdict_and_the_error_rate_is_kept() {
     trial.leave();
     let again = place.review(&["lowen_001.nc"]);
     assert_eq!(again.record().spot_checks().count(), 1);
+}
+
+#[test]
+fn the_spread_tells_nothing_of_the_verdict_either() {
+    let place = place(&["lowen_001.nc"]);
+    screen(&place, "lowen_001.nc");
+    let mut trial = place.review(&["lowen_001.nc"]);
+    trial.keys("4 z");
+    let flagged = |screen: &str| screen.lines().skip(2).any(|line| line.contains('#'));
+    assert!(flagged(&trial.screen(80, 24)));
+    trial.keys("@");
+    assert!(trial.bench().is_blind() && trial.screen(80, 24).contains("Spread"));
+    assert!(!flagged(&trial.screen(80, 24)), "{}", trial.screen(80, 24));
 }
 
 #[test]

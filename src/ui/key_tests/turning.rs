@@ -1,6 +1,8 @@
 //! From granule to granule.
 
 use super::append_byte;
+use crate::ui::event::Event;
+use crate::ui::jobs::Job;
 use crate::ui::trial::Place;
 
 #[test]
@@ -53,6 +55,32 @@ fn going_back_to_a_file_that_has_gone_comes_back_to_the_one_that_is_there() {
     trial.keys("p");
     assert_eq!(trial.granule(), "b.nc");
     assert!(trial.message().starts_with("a.nc: "), "{}", trial.message());
+}
+
+#[test]
+fn what_others_decided_is_looked_for_once_at_a_time() {
+    let place = Place::with(&["a.nc"]);
+    let mut trial = place.review(&["a.nc"]);
+    // The first look hangs on a disk.
+    (0..3).for_each(|_| trial.event(Event::Quiet));
+    assert_eq!(trial.jobs.len(), 1);
+    trial.settle();
+    trial.event(Event::Quiet);
+    assert_eq!(trial.jobs.len(), 1);
+}
+
+#[test]
+fn what_is_looked_for_in_a_granule_ends_with_it() {
+    let place = Place::with(&["a.nc", "b.nc"]);
+    append_byte(&place.path("b.nc"));
+    let mut trial = place.review(&["a.nc", "b.nc"]);
+    trial.types(":select bt(900) < 252.5");
+    ["Enter", "Q", "n"].iter().for_each(|key| trial.press(key));
+    let cancels = trial.jobs.iter().filter_map(|job| match job {
+        Job::Select { cancel, .. } | Job::Trace { cancel, .. } => Some(cancel.is_cancelled()),
+        _ => None,
+    });
+    assert_eq!(cancels.collect::<Vec<_>>(), [true, true]);
 }
 
 #[test]

@@ -6,7 +6,7 @@ use ratatui::widgets::{Clear, Widget};
 use unicode_width::UnicodeWidthStr;
 
 use crate::ui::colour::{Theme, Tone};
-use crate::ui::widgets::{clip, draw_input, first_shown, put};
+use crate::ui::widgets::{clip, cut, draw_input, first_shown, put};
 
 /// Everything the command line shows.
 #[derive(Clone, Debug)]
@@ -41,7 +41,10 @@ const COMPLETIONS: u16 = 8;
 pub fn draw(view: &CommandView<'_>, theme: &Theme, line: Rect, buffer: &mut Buffer) {
     let Some(line) = clip(line, buffer) else { return };
     Clear.render(line, buffer);
-    let used = put(line, view.lead, theme.style(Tone::Accent), theme.ascii, buffer);
+    // However long the lead is, there is room for what is typed.
+    let lead = cut(view.lead, usize::from(line.width / 2), theme.ascii);
+    let cut_off = u16::from(lead != view.lead);
+    let used = put(line, &lead, theme.style(Tone::Accent), theme.ascii, buffer) + cut_off;
     let text = Rect { x: line.x + used, width: line.width - used, ..line };
     draw_input(view.text, view.cursor, theme, text, buffer);
     let mut above = line.y - buffer.area.y;
@@ -102,6 +105,21 @@ mod tests {
         );
         assert!(screen.buffer[(0, 3)].modifier.contains(Modifier::REVERSED));
         assert!(screen.buffer[(2, 5)].modifier.contains(Modifier::REVERSED), "the cursor");
+    }
+
+    #[test]
+    fn what_is_typed_is_seen_behind_a_long_lead() {
+        let view = CommandView {
+            lead: "bt(900) - bt(831) + bt(1231) ",
+            text: "< 3",
+            cursor: 3,
+            completions: &[],
+            chosen: None,
+            problem: "",
+        };
+        let mut screen = Screen::new(20, 1);
+        draw(&view, &THEME, screen.area(), &mut screen.buffer);
+        assert_eq!(screen.lines(), ["bt(900) -… < 3"]);
     }
 
     #[test]

@@ -15,7 +15,7 @@ pub struct EvidenceView<'a> {
     pub title: &'a str,
     /// The rows, in order.
     pub rows: &'a [EvidenceRow],
-    /// How many rows are scrolled away at the top.
+    /// How many lines are scrolled away at the top; more than there are is the end.
     pub scroll: usize,
     /// Whether the keys go to this pane.
     pub focused: bool,
@@ -61,6 +61,12 @@ pub fn draw(view: &EvidenceView<'_>, theme: &Theme, area: Rect, buffer: &mut Buf
         draw_line(line, unit_width, theme, row, buffer);
     }
     draw_more(room, first, lines.len(), theme, buffer);
+}
+
+/// How many lines can be scrolled away before the last one is on show.
+pub fn last_scroll(view: &EvidenceView<'_>, area: Rect) -> usize {
+    let lines = lines(view, area.width.saturating_sub(2)).len();
+    lines.saturating_sub(usize::from(area.height.saturating_sub(1)))
 }
 
 /// One line on the screen; a row may take several.

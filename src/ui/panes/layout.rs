@@ -60,6 +60,11 @@ impl ScreenLayout {
         Some(Self { panes, status, command })
     }
 
+    /// The whole screen, whose last line is that of commands.
+    pub fn screen(&self) -> Rect {
+        Rect { y: 0, height: self.command.bottom(), ..self.command }
+    }
+
     /// The panes on show and where.
     pub fn panes(&self) -> impl Iterator<Item = (Pane, Rect)> {
         self.panes.iter().copied()

@@ -33,9 +33,7 @@ pub struct MessageRow {
 
 /// Draws the list over the screen.
 pub fn draw(view: &MessagesView<'_>, theme: &Theme, screen: Rect, buffer: &mut Buffer) {
-    let widest = |row: &MessageRow| row.text.width().max(row.advice.width()) + 2;
-    let wanted = view.rows.iter().map(widest).max().unwrap_or(0).max(view.empty.width());
-    let width = wanted.clamp(40, usize::from(screen.width.saturating_sub(8)).max(40)).min(100);
+    let width = width(view, screen);
     let lines = lines(view, width.min(usize::from(screen.width.saturating_sub(4))));
     let popup = Popup {
         title: view.title,
@@ -49,6 +47,19 @@ pub fn draw(view: &MessagesView<'_>, theme: &Theme, screen: Rect, buffer: &mut B
     }
     let edge = Rect { width: inner.width + 1, ..inner };
     draw_more(edge, first, lines.len(), theme, buffer);
+}
+
+/// How many lines can be scrolled away on this screen before the last one is on show.
+pub fn last_scroll(view: &MessagesView<'_>, screen: Rect) -> usize {
+    let room = usize::from(screen.width.saturating_sub(4));
+    let lines = lines(view, width(view, screen).min(room)).len();
+    lines.saturating_sub(usize::from(screen.height.saturating_sub(2)))
+}
+
+fn width(view: &MessagesView<'_>, screen: Rect) -> usize {
+    let widest = |row: &MessageRow| row.text.width().max(row.advice.width()) + 2;
+    let wanted = view.rows.iter().map(widest).max().unwrap_or(0).max(view.empty.width());
+    wanted.clamp(40, usize::from(screen.width.saturating_sub(8)).max(40)).min(100)
 }
 
 fn lines(view: &MessagesView<'_>, width: usize) -> Vec<(String, Tone)> {
@@ -91,6 +102,24 @@ mod tests {
                 "",
             ]
         );
+    }
+
+    #[test]
+    fn the_last_scroll_shows_the_last_line_and_no_more() {
+        let row = |text: String| MessageRow { text, ..MessageRow::default() };
+        let mut rows = vec![row("word ".repeat(80)); 3];
+        rows.push(row("the end".to_owned()));
+        let screen = Screen::new(48, 8);
+        let end = last_scroll(
+            &MessagesView { title: "", rows: &rows, scroll: 0, empty: "" },
+            screen.area(),
+        );
+        for (scroll, last) in [(end, true), (end - 1, false)] {
+            let view = MessagesView { title: "", rows: &rows, scroll, empty: "" };
+            let mut screen = Screen::new(48, 8);
+            draw(&view, &THEME, screen.area(), &mut screen.buffer);
+            assert_eq!(screen.lines()[6].contains("the end"), last, "{:?}", screen.lines());
+        }
     }
 
     #[test]

@@ -21,20 +21,29 @@ const MOST_DECISIONS: usize = 2;
 
 /// Draws the Evidence.
 pub fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
+    with_view(app, area, |view| evidence::draw(view, &app.theme, area, buffer));
+}
+
+/// How many lines of the Evidence can be scrolled away.
+pub fn last_evidence_scroll(app: &App) -> usize {
+    let area = app.area_of(Pane::Evidence);
+    area.map_or(0, |area| with_view(app, area, |view| evidence::last_scroll(view, area)))
+}
+
+fn with_view<R>(app: &App, area: Rect, use_view: impl FnOnce(&EvidenceView<'_>) -> R) -> R {
     let rows = evidence_rows(app);
     let title = app.bench().map(|bench| bench.position_words(bench.cursor)).unwrap_or_default();
-    let view = EvidenceView {
+    use_view(&EvidenceView {
         title: &title,
         rows: &rows,
         scroll: app.evidence_scroll,
         focused: app.focus() == Pane::Evidence,
         detailed: area.width >= 60 || area.height >= 34,
-    };
-    evidence::draw(&view, &app.theme, area, buffer);
+    })
 }
 
 /// The rows, in order: what was decided, what the tests say, indices, windows, quality, geolocation.
-pub fn evidence_rows(app: &App) -> Vec<EvidenceRow> {
+fn evidence_rows(app: &App) -> Vec<EvidenceRow> {
     let Some(bench) = app.bench() else { return Vec::new() };
     let mut rows = Vec::new();
     if bench.is_blind() {

@@ -5,7 +5,7 @@ use ratatui::layout::Rect;
 
 use super::field_signs;
 use crate::ui::app::{App, Table};
-use crate::ui::bench::Bench;
+use crate::ui::bench::{Bench, Signs};
 use crate::ui::colour::Scale;
 use crate::ui::panes::Pane;
 use crate::ui::panes::field::{self, FieldView, FlagSign, Pin, Placement};
@@ -63,7 +63,8 @@ impl FieldParts {
             selected: &self.selected,
             scale: bench.map_or_else(Scale::default, |bench| bench.layer.scale),
             coarse: app.low_bandwidth,
-            cursor: bench.filter(|bench| bench.marks).map(|bench| bench.cursor),
+            cursor: bench.map(|bench| bench.cursor),
+            marked: bench.is_some_and(|bench| bench.marks),
             corners: bench.and_then(corners),
             polygon: bench.map_or(&[], polygon),
             pins: &self.pins,
@@ -99,7 +100,18 @@ fn title(bench: &Bench) -> String {
     match &layer.problem {
         Some(problem) => format!("{}: {problem}", layer.text),
         None if bench.wanted != layer.text => format!("{} → {}", layer.text, bench.wanted),
-        None => layer.text.clone(),
+        None => layer.text.clone() + signs(bench),
+    }
+}
+
+/// What the signs tell where it is not the usual: one letter may stand for what the tests say or for
+/// what was decided.
+fn signs(bench: &Bench) -> &'static str {
+    match bench.signs {
+        Signs::Flags => "",
+        Signs::Tests => ", signs: tests",
+        Signs::Doubt => ", signs: doubt",
+        Signs::None => ", no signs",
     }
 }
 

@@ -19,10 +19,10 @@ mod tray;
 mod under_cursor;
 mod under_mouse;
 
-pub use evidence::evidence_rows;
+pub use evidence::last_evidence_scroll;
 pub use field::footprint_under;
 pub use help::{help_groups, problem_rows};
-pub use overlay::draw_overlay;
+pub use overlay::{draw_overlay, last_problem_scroll};
 pub use spread::spread_place_under;
 pub use status::{hints, side_preview, status_facts};
 pub use strip::{strip_entry_under, strip_footprint_under};

@@ -24,14 +24,7 @@ pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Bu
             help::draw(&view, theme, screen, buffer);
         }
         Overlay::Problems(scroll) => {
-            let rows = super::problem_rows(app);
-            let view = MessagesView {
-                title: "Problems and guesses",
-                rows: &rows,
-                scroll: *scroll,
-                empty: "nothing was missing, guessed or odd",
-            };
-            messages::draw(&view, theme, screen, buffer);
+            with_problems(app, *scroll, |view| messages::draw(view, theme, screen, buffer));
         }
         Overlay::Line(prompt) => draw_line(app, prompt, screen, command_line, buffer),
         Overlay::Flags(prompt) => draw_flags(app, prompt, screen, buffer),
@@ -52,6 +45,22 @@ pub fn draw_overlay(app: &App, screen: Rect, command_line: Rect, buffer: &mut Bu
             prompt::draw(&view, theme, screen, buffer);
         }
     }
+}
+
+/// How many lines of the problems can be scrolled away.
+pub fn last_problem_scroll(app: &App) -> usize {
+    let Some(layout) = &app.layout else { return 0 };
+    let screen = layout.screen();
+    with_problems(app, 0, |view| messages::last_scroll(view, screen))
+}
+
+fn with_problems<R>(app: &App, scroll: usize, use_view: impl FnOnce(&MessagesView<'_>) -> R) -> R {
+    use_view(&MessagesView {
+        title: "Problems and guesses",
+        rows: &super::problem_rows(app),
+        scroll,
+        empty: "nothing was missing, guessed or odd",
+    })
 }
 
 fn draw_line(

@@ -86,6 +86,7 @@ mod tests {
             scale: Scale { palette: Palette::Viridis, low: 200.0, high: 300.0 },
             coarse: false,
             cursor: None,
+            marked: true,
             corners: None,
             polygon: &[],
             pins: &[],

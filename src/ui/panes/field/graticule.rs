@@ -2,7 +2,7 @@
 
 use ratatui::buffer::Buffer;
 
-use super::pixels::{Dot, ground, set_sign};
+use super::pixels::{Dot, ground, is_signed, set_sign};
 use super::{FieldView, Geometry};
 use crate::ui::colour::{Theme, Tone};
 use crate::ui::widgets::ticks;
@@ -39,21 +39,24 @@ pub(super) fn draw(view: &FieldView<'_>, geometry: &Geometry, theme: &Theme, buf
             }
         });
     let signs = if theme.ascii { ['|', '-', '+'] } else { ['│', '─', '┼'] };
-    let xs = meridians.iter().map(|line| cell(geometry, line.place, rows.start as f64));
-    let xs: Vec<u16> = xs.flatten().map(|cell| cell.0).collect();
-    let ys = parallels.iter().map(|line| cell(geometry, columns.start as f64, line.place));
-    let ys: Vec<u16> = ys.flatten().map(|cell| cell.1).collect();
+    // A line on the very edge lies in no cell.
+    let x_of = |line: &Line| Some(geometry.cell_at(line.place, rows.start as f64)?.0);
+    let y_of = |line: &Line| Some(geometry.cell_at(columns.start as f64, line.place)?.1);
+    let meridians: Vec<(u16, &Line)> =
+        meridians.iter().filter_map(|line| Some((x_of(line)?, line))).collect();
+    let parallels: Vec<(u16, &Line)> =
+        parallels.iter().filter_map(|line| Some((y_of(line)?, line))).collect();
     let mut put = |x: u16, y: u16, sign: char, everywhere: bool| {
         put_sign((x, y), sign, everywhere, view, geometry, theme, buffer);
     };
-    for x in &xs {
+    for (x, _) in &meridians {
         (geometry.area.y..geometry.area.bottom()).for_each(|y| put(*x, y, signs[0], false));
     }
-    for y in &ys {
+    for (y, _) in &parallels {
         (geometry.area.x..geometry.area.right()).for_each(|x| put(x, *y, signs[1], false));
     }
-    for (x, y) in xs.iter().flat_map(|x| ys.iter().map(move |y| (*x, *y))) {
-        put(x, y, signs[2], true);
+    for (x, _) in &meridians {
+        parallels.iter().for_each(|(y, _)| put(*x, *y, signs[2], true));
     }
     let mut write = |x: u16, y: u16, text: &str| {
         let fits = x + text.len() as u16 <= geometry.area.right();
@@ -61,20 +64,16 @@ pub(super) fn draw(view: &FieldView<'_>, geometry: &Geometry, theme: &Theme, buf
             put(x, y, letter, true);
         }
     };
-    for (y, line) in ys.iter().zip(&parallels) {
+    for (y, line) in &parallels {
         write(geometry.area.x, *y, &line.label);
     }
-    for (x, line) in xs.iter().zip(&meridians) {
+    for (x, line) in &meridians {
         write(
             x.saturating_sub(line.label.len() as u16 / 2).max(geometry.area.x),
             geometry.area.bottom() - 1,
             &line.label,
         );
     }
-}
-
-fn cell(geometry: &Geometry, column: f64, row: f64) -> Option<(u16, u16)> {
-    geometry.cell_at(column, row)
 }
 
 /// Round numbers of a range as lines.
@@ -114,11 +113,10 @@ fn put_sign(
     }
     let is_empty = dots.iter().all(|dot| *dot == Dot::Nothing);
     let Some(cell) = buffer.cell_mut(at) else { return };
-    // Signs of flags and of the selection say more.
-    let is_signed = !matches!(cell.symbol(), " " | "▀" | "▄" | "│" | "─" | "┼" | "|" | "-" | "+");
     if is_empty {
         set_sign(sign, theme.style(Tone::Faint), None, cell);
-    } else if everywhere && !is_signed {
+    } else if everywhere && !is_signed(view, geometry, at) {
+        // Signs of flags and of the selection say more.
         let (ground, light) = ground(dots, view.scale.palette, theme);
         set_sign(sign, theme.sign_on(ground.is_some(), light), ground, cell);
     }
@@ -131,6 +129,31 @@ mod tests {
     use crate::ui::panes::field::{Placement, draw as draw_field};
     use crate::ui::widgets::{Screen, THEME};
 
+    fn plain() -> FieldView<'static> {
+        static NOWHERE: std::sync::LazyLock<Placement> =
+            std::sync::LazyLock::new(Placement::default);
+        FieldView {
+            title: "lat",
+            value: "",
+            unit: "K",
+            placement: &NOWHERE,
+            values: &[],
+            pending: &[],
+            flags: &[],
+            signs: &[],
+            selected: &[],
+            scale: Scale::default(),
+            coarse: false,
+            cursor: None,
+            marked: true,
+            corners: None,
+            polygon: &[],
+            pins: &[],
+            zoom: 0,
+            focused: false,
+        }
+    }
+
     #[test]
     fn degrees_are_named_by_their_side() {
         assert_eq!(named(12.5, 'N', 'S'), "12.5N");
@@ -142,29 +165,50 @@ mod tests {
     }
 
     #[test]
+    fn labels_stand_on_any_ink_and_at_their_own_lines() {
+        // The southern edge is at 5N exactly; without colours the map is all ink.
+        let latitude: Vec<f64> = (0..66).map(|at| 15.0 - f64::from(at / 6)).collect();
+        let longitude: Vec<f64> = (0..66).map(|at| 20.0 + f64::from(at % 6)).collect();
+        let placement = Placement::geographic(&latitude, &longitude).unwrap();
+        let values: Vec<f64> = (0..66).map(f64::from).collect();
+        let view = FieldView {
+            placement: &placement,
+            values: &values,
+            scale: Scale { low: 0.0, high: 65.0, ..Scale::default() },
+            ..plain()
+        };
+        let theme = Theme { depth: crate::ui::colour::ColourDepth::None, ..THEME };
+        let mut screen = Screen::new(50, 30);
+        draw_field(&view, &theme, screen.area(), &mut screen.buffer);
+        let lines = screen.lines();
+        let labelled: Vec<(usize, f64)> = lines
+            .iter()
+            .enumerate()
+            .filter_map(|(row, line)| {
+                let label = line.trim_start().split('N').next()?;
+                Some((row, label.parse().ok()?))
+            })
+            .collect();
+        assert!(labelled.len() >= 2, "{lines:#?}");
+        let graticule = placement.graticule().unwrap();
+        for (row, latitude) in labelled {
+            let place = (graticule.north - latitude) / graticule.step.1;
+            let geometry = super::super::geometry(&view, &theme, screen.area()).unwrap();
+            assert_eq!(geometry.cell_at(0.0, place).unwrap().1 as usize, row, "{lines:#?}");
+        }
+    }
+
+    #[test]
     fn lines_run_through_empty_ground_and_cross_everywhere() {
         // Two far footprints leave most of the map empty.
         let placement =
             Placement::geographic(&[10.0, 10.0, 0.0, 0.0], &[20.0, 20.5, 30.0, 29.5]).unwrap();
         let values = [1.0, 2.0, 3.0, 4.0];
         let view = FieldView {
-            title: "lat",
-            value: "",
-            unit: "K",
             placement: &placement,
             values: &values,
-            pending: &[],
-            flags: &[],
-            signs: &[],
-            selected: &[],
             scale: Scale { low: 1.0, high: 4.0, ..Scale::default() },
-            coarse: false,
-            cursor: None,
-            corners: None,
-            polygon: &[],
-            pins: &[],
-            zoom: 0,
-            focused: false,
+            ..plain()
         };
         let mut screen = Screen::new(50, 16);
         draw_field(&view, &THEME, screen.area(), &mut screen.buffer);

@@ -29,7 +29,8 @@ pub(super) fn draw(
             put_mark(cell, pin.letter, theme, buffer);
         }
     }
-    let cursor = view.cursor.and_then(|footprint| geometry.cell_of(view.placement, footprint));
+    let cursor = view.cursor.filter(|_| view.marked);
+    let cursor = cursor.and_then(|footprint| geometry.cell_of(view.placement, footprint));
     if let Some(cell) = cursor {
         draw_cursor(cell, cursor_sign(view, theme), geometry, theme, pane, buffer);
     }

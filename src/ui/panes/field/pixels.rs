@@ -127,6 +127,12 @@ fn gather(view: &FieldView<'_>, geometry: &Geometry, cell: (u16, u16)) -> (u32, 
     (flags, selected)
 }
 
+/// Whether a cell carries the sign of a flag or of the selection.
+pub(super) fn is_signed(view: &FieldView<'_>, geometry: &Geometry, cell: (u16, u16)) -> bool {
+    let (flags, selected) = gather(view, geometry, cell);
+    selected || view.signs.iter().any(|sign| sign.mask & flags != 0)
+}
+
 /// A flag's sign, or that of the selection, over the colour of the cell.
 fn draw_signs(
     view: &FieldView<'_>,

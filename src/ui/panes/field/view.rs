@@ -32,6 +32,8 @@ pub struct FieldView<'a> {
     pub coarse: bool,
     /// The footprint under the cursor.
     pub cursor: Option<usize>,
+    /// Whether it is marked on the map.
+    pub marked: bool,
     /// Opposite corners of a box being drawn, as footprints.
     pub corners: Option<(usize, usize)>,
     /// The corners of a polygon being drawn but for the last, which is the cursor.

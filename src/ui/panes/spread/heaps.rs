@@ -6,11 +6,13 @@ use ratatui::style::Style;
 
 use super::draw::cell_of;
 use super::{Heaps, Kind};
-use crate::ui::colour::{Theme, Tone};
+use crate::ui::colour::{ColourDepth, Theme, Tone};
 use crate::ui::widgets::{put, put_right, short};
 
-/// The kinds from below, with their letters where there are no blocks.
-const KINDS: [(Kind, char); 3] = [(Kind::Flagged, '#'), (Kind::Clear, ':'), (Kind::Open, '.')];
+/// The kinds from below: their letters where there are no blocks or no colours, and the blocks of
+/// whole cells, so that colours are not all that tells them apart.
+const KINDS: [(Kind, char, char); 3] =
+    [(Kind::Flagged, '#', '█'), (Kind::Clear, ':', '░'), (Kind::Open, '.', '▒')];
 const EIGHTHS: [char; 8] = ['▁', '▂', '▃', '▄', '▅', '▆', '▇', '█'];
 
 /// What one column holds.
@@ -39,7 +41,7 @@ fn columns(heaps: &Heaps<'_>, width: u16) -> Vec<Column> {
     for (footprint, value) in heaps.values.iter().enumerate() {
         let Some(cell) = cell_of(*value, heaps.range, width) else { continue };
         let kind = heaps.kinds.get(footprint).copied().unwrap_or(Kind::Open);
-        let place = KINDS.iter().position(|(known, _)| *known == kind).unwrap_or(2);
+        let place = KINDS.iter().position(|(known, ..)| *known == kind).unwrap_or(2);
         let column = &mut columns[usize::from(cell)];
         column.counts[place] += 1;
         column.selected |= heaps.selected.get(footprint).copied().unwrap_or(false);
@@ -75,8 +77,10 @@ fn draw_column(
         }
         let middle = (usize::from(row) * 8 + filled / 2) * all / eighths;
         let kind = kind_at(column, middle);
-        let sign = match KINDS.iter().find(|(known, _)| *known == kind) {
-            Some((_, letter)) if theme.ascii => *letter,
+        let letters = theme.ascii || theme.depth == ColourDepth::None;
+        let sign = match KINDS.iter().find(|(known, ..)| *known == kind) {
+            Some((_, letter, _)) if letters => *letter,
+            Some((.., whole)) if filled == 8 => *whole,
             _ => EIGHTHS[filled - 1],
         };
         if let Some(cell) = buffer.cell_mut((x, bars.bottom() - 1 - row)) {
@@ -88,14 +92,14 @@ fn draw_column(
 /// The kind of the footprint that lies so high in a column.
 fn kind_at(column: &Column, height: usize) -> Kind {
     let mut top = 0;
-    for (count, (kind, _)) in column.counts.iter().zip(KINDS) {
+    for (count, (kind, ..)) in column.counts.iter().zip(KINDS) {
         top += count;
         if height < top {
             return kind;
         }
     }
     let last = column.counts.iter().zip(KINDS).rev().find(|(count, _)| **count > 0);
-    last.map_or(Kind::Open, |(_, (kind, _))| kind)
+    last.map_or(Kind::Open, |(_, (kind, ..))| kind)
 }
 
 fn draw_threshold(heaps: &Heaps<'_>, bars: Rect, theme: &Theme, buffer: &mut Buffer) {
@@ -161,5 +165,34 @@ fn draw_numbers(heaps: &Heaps<'_>, most: usize, line: Rect, theme: &Theme, buffe
         let middle = line.x + (line.width - words.len() as u16) / 2;
         let place = Rect { x: middle, width: words.len() as u16, ..line };
         put(place, &words, theme.style(Tone::Faint), theme.ascii, buffer);
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::ui::widgets::{Screen, THEME};
+
+    #[test]
+    fn kinds_are_told_apart_without_colours() {
+        let kinds = [Kind::Flagged, Kind::Clear, Kind::Open];
+        let heaps = Heaps {
+            values: &[0.5, 3.5, 6.5],
+            unit: "K",
+            kinds: &kinds,
+            selected: &[],
+            range: (0.0, 7.0),
+            threshold: None,
+            valley: None,
+            cursor: None,
+            brush: None,
+        };
+        let colourless = Theme { depth: ColourDepth::None, ..THEME };
+        for (theme, signs) in [(THEME, "█░▒"), (colourless, "#:.")] {
+            let mut screen = Screen::new(7, 5);
+            draw(&heaps, &theme, screen.area(), &mut screen.buffer);
+            let seen: String = screen.lines()[1].chars().filter(|sign| *sign != ' ').collect();
+            assert_eq!(seen, signs);
+        }
     }
 }
