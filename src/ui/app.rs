@@ -22,6 +22,7 @@ use super::line::History;
 use super::overlay::{Deed, Overlay};
 use super::owed::Owed;
 use super::panes::{Arrangement, Pane, ScreenLayout};
+use super::precedents::Visit;
 use super::spreading::Known;
 use super::strip::Strip;
 
@@ -95,6 +96,8 @@ pub struct App {
     /// The footprint to go to in the granule being opened, as soon as its ledgers are read, and what
     /// is said of it then.
     pub seek_footprint: Option<(usize, String)>,
+    /// Going round the footprints that are like one and decided.
+    pub visit: Option<Visit>,
     /// What is to be done as soon as the ledgers of the granule being opened are read.
     pub then: Option<Action>,
     /// Records of granules left while their last decisions were still on the way to the disk.
@@ -168,6 +171,7 @@ impl App {
             searching: false,
             seek_case: None,
             seek_footprint: None,
+            visit: None,
             then: None,
             left: Vec::new(),
             panes: Arrangement::default(),

@@ -19,7 +19,6 @@ use super::overlay::Selection;
 use super::panes::Arrangement;
 use super::panes::field::Placement;
 use super::place::Place;
-use super::precedents::Visit;
 use super::selecting::{Selecting, Shape};
 use super::shown_layer::ShownLayer;
 use super::side::Side;
@@ -56,8 +55,6 @@ pub struct Bench {
     pub spread: Spread,
     /// The spectra as they were compared last.
     pub measured: Option<Arc<Measured>>,
-    /// Going round the footprints that are like the one under the cursor and decided.
-    pub visit: Option<Visit>,
     /// A spot check under way.
     pub spot: Option<Spot>,
     /// What is left in doubt.
@@ -143,7 +140,6 @@ impl Bench {
             spread: Spread::default(),
             channel_pick: ChannelPick::default(),
             measured: None,
-            visit: None,
             spot: None,
             doubt: Doubt::default(),
             layer: ShownLayer::waiting(&wanted),

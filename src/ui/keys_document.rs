@@ -32,6 +32,12 @@ A key given to one action is taken from the one that has it by this table; two s
 clash, and the first holds. What is wrong is named with its line when a granule opens, and by `!`.
 The keys of `quit`, `help`, `command` and `cancel` stay theirs. The help and the hints show the keys in
 force.
+
+Leaving waits for what was begun: decisions, masks, sign-offs by rule and changes of the rulebook are
+written first, and what could not be written holds whoever leaves. The key of `quit` pressed once more
+asks whether to wait no longer; Esc stays. What is found late, after another key was pressed, takes
+neither keys nor selection; the status line tells of it. On a screen too small to show the panes only
+the keys of `quit`, `suspend` and `redraw` do anything.
 ";
 
 const COMMANDS: &str = "

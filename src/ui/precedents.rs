@@ -30,12 +30,31 @@ pub struct Precedent {
     pub far: f64,
 }
 
-/// Going round the precedents of a footprint.
-#[derive(Debug, Clone)]
+/// Going round the precedents of a footprint, through whatever granules they lie in. They are those of
+/// its beginning: what they are measured by belongs to the granule where it began.
+#[derive(Debug)]
 pub struct Visit {
-    from: usize,
-    round: Vec<usize>,
-    at: usize,
+    from: Stop,
+    stops: Vec<Stop>,
+    /// How many of them were gone to.
+    gone: usize,
+}
+
+#[derive(Debug, Clone)]
+struct Stop {
+    /// The granule by its entry in the Tray.
+    entry: usize,
+    footprint: usize,
+    /// What is said there.
+    words: String,
+}
+
+impl Visit {
+    /// Whether one stands where it led to.
+    fn is_at(&self, entry: usize, footprint: usize) -> bool {
+        let last = self.gone.checked_sub(1).and_then(|last| self.stops.get(last));
+        last.is_some_and(|stop| (stop.entry, stop.footprint) == (entry, footprint))
+    }
 }
 
 impl Bench {
@@ -104,52 +123,44 @@ pub fn measured(app: &mut App, request: u64, found: Result<Arc<Measured>, String
 
 /// Goes to the most alike footprint that a person decided, then to the next, and at last back.
 pub fn visit(app: &mut App) -> Vec<Job> {
-    let known = std::mem::take(&mut app.known);
-    let next = app.bench_mut().map(|bench| next_stop(bench, &known));
-    app.known = known;
-    match next {
-        None => super::looking::no_granule(app),
-        Some(None) => {
-            app.say("no footprint that a person decided was compared with this one");
-            Vec::new()
+    let Some(bench) = app.bench() else { return super::looking::no_granule(app) };
+    let (entry, cursor) = (bench.entry, bench.cursor);
+    let under_way = app.visit.take().filter(|visit| visit.is_at(entry, cursor));
+    let Some(mut visit) = under_way.or_else(|| begin(app)) else { return Vec::new() };
+    let Some(stop) = visit.stops.get(visit.gone).cloned() else {
+        if visit.gone > 0 {
+            return go_to(app, &visit.from);
         }
-        Some(Some(Stop::Back(footprint))) => {
-            let jobs = moving::go(app, footprint);
-            app.say("back again");
-            jobs
-        }
-        Some(Some(Stop::At(precedent))) => go_to(app, &precedent),
-    }
-}
-
-enum Stop {
-    At(Precedent),
-    Back(usize),
-}
-
-fn next_stop(bench: &mut Bench, known: &Known) -> Option<Stop> {
-    let cursor = bench.cursor;
-    let under_way = bench.visit.take().filter(|visit| visit.round.last() == Some(&cursor));
-    let mut visit = under_way.unwrap_or(Visit { from: cursor, round: Vec::new(), at: 0 });
-    let precedents = bench.precedents(visit.from, known);
-    let Some(next) = precedents.get(visit.at) else {
-        return (visit.at > 0).then_some(Stop::Back(visit.from));
+        app.say("no footprint that a person decided was compared with this one");
+        return Vec::new();
     };
-    visit.at += 1;
-    visit.round.push(next.footprint);
-    bench.visit = Some(visit);
-    Some(Stop::At(next.clone()))
+    visit.gone += 1;
+    let jobs = go_to(app, &stop);
+    app.visit = Some(visit);
+    jobs
 }
 
-fn go_to(app: &mut App, precedent: &Precedent) -> Vec<Job> {
-    let words = app.bench().map(|bench| words(bench, precedent, app)).unwrap_or_default();
-    let Some(entry) = precedent.entry else {
-        let jobs = moving::go(app, precedent.footprint);
-        app.say(words);
+/// A round from the footprint under the cursor.
+fn begin(app: &App) -> Option<Visit> {
+    let bench = app.bench()?;
+    let stop = |precedent: &Precedent| Stop {
+        entry: precedent.entry.unwrap_or(bench.entry),
+        footprint: precedent.footprint,
+        words: words(bench, precedent, app),
+    };
+    let stops = bench.precedents(bench.cursor, &app.known).iter().map(stop).collect();
+    let from = Stop { entry: bench.entry, footprint: bench.cursor, words: "back again".to_owned() };
+    Some(Visit { from, stops, gone: 0 })
+}
+
+fn go_to(app: &mut App, stop: &Stop) -> Vec<Job> {
+    if app.current_entry() == Some(stop.entry) {
+        let jobs = moving::go(app, stop.footprint);
+        app.say(stop.words.clone());
         return jobs;
-    };
-    let jobs = turning::open(app, entry, Direction::Forward);
-    app.seek_footprint = Some((precedent.footprint, words));
+    }
+    let jobs = turning::open(app, stop.entry, Direction::Forward);
+    app.seek_footprint = Some((stop.footprint, stop.words.clone()));
     jobs
 }
 

@@ -2,10 +2,11 @@
 
 use ratatui::layout::Size;
 
-use super::one_granule;
+use super::{append_byte, one_granule};
 use crate::ui::event::{Button, Event, Input, Mouse};
 use crate::ui::jobs::Job;
 use crate::ui::panes::Pane;
+use crate::ui::strip::Along;
 use crate::ui::trace_look::Reference;
 use crate::ui::trial::{POSITIONS, Place, Trial};
 use crate::ui::views;
@@ -321,6 +322,24 @@ fn what_is_known_beside_a_spectrum_is_not_replaced_by_what_comes_late() {
     trial.settle();
     let beside = trial.bench().look.beside.as_ref().map(|beside| beside.footprint);
     assert_eq!((trial.bench().cursor, beside), (1, Some(1)));
+}
+
+#[test]
+fn what_is_no_plain_file_is_no_reference() {
+    let (_place, mut trial) = one_granule();
+    trial.types(":reference /dev/zero").keys("Enter");
+    assert!(trial.message().contains("it is not a file of text"), "{}", trial.message());
+}
+
+#[test]
+fn the_strip_lies_along_a_dimension_that_is_there() {
+    let place = Place::with(&["a.nc", "b.nc"]);
+    append_byte(&place.path("b.nc"));
+    let mut trial = place.review(&["a.nc", "b.nc"]);
+    // As a granule of three dimensions leaves it.
+    trial.app.strip.along = Along::Dimension(2);
+    trial.keys("n");
+    assert_eq!(trial.app.strip.along, Along::Dimension(1));
 }
 
 #[test]

@@ -41,6 +41,9 @@ fn those_of_compared_granules_are_among_them_and_can_be_gone_to() {
     trial.keys("Enter");
     assert_eq!((trial.granule().as_str(), trial.bench().cursor), ("b.nc", 2));
     assert!(trial.message().starts_with("b.nc (0, 2): so2, 1.000 K away"), "{}", trial.message());
+    trial.keys("Enter");
+    assert_eq!((trial.granule().as_str(), trial.bench().cursor), ("a.nc", 1));
+    assert_eq!(trial.message(), "back again");
 }
 
 #[test]
