@@ -186,10 +186,10 @@ impl Inputs {
         if files.is_empty() {
             return Err(UsageError("no input files: name files, folders or globs".into()).into());
         }
-        // Masks that were exported beside their granules come with every glob. Named alone they
-        // stay, and the reader says that they hold no spectra.
-        if !files.iter().all(|file| is_mask(file)) {
-            say_left_out(files.extract_if(.., |file| is_mask(file)).collect());
+        // What we wrote ourselves beside the granules comes with every glob. Named alone it stays,
+        // and the reader says that it holds no spectra.
+        if !files.iter().all(|file| is_own(file)) {
+            say_left_out(files.extract_if(.., |file| is_own(file)).collect());
         }
         let mut seen = HashSet::new();
         files.retain(|file| seen.insert(same_file(file)));
@@ -197,17 +197,21 @@ impl Inputs {
     }
 }
 
-/// Whether a file goes by the name of a mask of ours.
-fn is_mask(path: &Path) -> bool {
-    path.file_name().is_some_and(|name| name.as_bytes().ends_with(b".mask.nc"))
+/// Whether a file goes by the name of a mask or a basis of components of ours.
+fn is_own(path: &Path) -> bool {
+    let ends =
+        |ending: &[u8]| path.file_name().is_some_and(|name| name.as_bytes().ends_with(ending));
+    ends(b".mask.nc") || ends(b".basis.nc")
 }
 
-fn say_left_out(masks: Vec<PathBuf>) {
-    let Some(first) = masks.first().and_then(|path| path.file_name()) else { return };
+fn say_left_out(own: Vec<PathBuf>) {
+    let Some(first) = own.first().and_then(|path| path.file_name()) else { return };
     let first = clean_text(&first.to_string_lossy());
-    match masks.len() {
-        1 => say!("radsieve: {first} is left out: it goes by the name of a mask"),
-        count => say!("radsieve: {count} files left out by their names as masks: {first}, …"),
+    match own.len() {
+        1 => say!("radsieve: {first} is left out: it goes by the name of a mask or a basis"),
+        count => {
+            say!("radsieve: {count} files left out by their names as masks or bases: {first}, …");
+        }
     }
 }
 
@@ -274,35 +278,50 @@ fn files_in(folder: &Path) -> anyhow::Result<Vec<PathBuf>> {
     Ok(found)
 }
 
-/// The files that a glob matches; it is walked from its last folder without a wildcard.
+/// The files that a glob matches; it is walked from its last folder that is there by its name. Hidden
+/// files are matched by parts with a leading dot only, as by shells.
 fn matches_of(pattern: &Path) -> anyhow::Result<Vec<PathBuf>> {
-    let text = pattern.to_string_lossy();
+    let mut root = PathBuf::new();
+    let mut rest = PathBuf::new();
+    // Components leave out `//` and `/./`.
+    for part in pattern.components() {
+        let is_plain = !has_wildcard(part.as_ref()) || root.join(part).is_dir();
+        if rest.as_os_str().is_empty() && is_plain { root.push(part) } else { rest.push(part) }
+    }
+    let text = rest.to_string_lossy();
+    let shown = || clean_text(&pattern.to_string_lossy());
     let glob = globset::GlobBuilder::new(&text)
         .literal_separator(true)
         .build()
-        .map_err(|error| UsageError(format!("{text}: {error}")))?;
+        .map_err(|error| UsageError(clean_text(&format!("{text}: {error}"))))?;
     let matcher = glob.compile_matcher();
-    let root: PathBuf =
-        pattern.components().take_while(|part| !has_wildcard(part.as_ref())).collect();
+    // `**` may go as deep as it likes, other globs only as deep as they are long.
+    let depth = if text.contains("**") { usize::MAX } else { rest.components().count() };
+    let is_hidden = |part: &OsStr| part.as_bytes().starts_with(b".");
+    let wants_hidden = rest.components().any(|part| is_hidden(part.as_ref()));
     let in_here = root.as_os_str().is_empty();
     let walk_root = if in_here { Path::new(".") } else { root.as_path() };
-    // `**` may go as deep as it likes, other globs only as deep as they are long.
-    let below = pattern.components().count() - root.components().count();
-    let depth = if text.contains("**") { usize::MAX } else { below };
-    let mut found: Vec<PathBuf> = walkdir::WalkDir::new(walk_root)
-        .follow_links(true)
-        .max_depth(depth)
-        .into_iter()
-        .filter_map(Result::ok)
-        .filter(|entry| entry.file_type().is_file())
-        .map(|entry| match in_here {
-            true => entry.path().strip_prefix(".").unwrap_or(entry.path()).to_owned(),
-            false => entry.into_path(),
-        })
-        .filter(|path| matcher.is_match(path))
-        .collect();
+    let mut found = Vec::new();
+    let walk = walkdir::WalkDir::new(walk_root).follow_links(true).max_depth(depth).into_iter();
+    for entry in walk
+        .filter_entry(|entry| entry.depth() == 0 || wants_hidden || !is_hidden(entry.file_name()))
+    {
+        let (path, is_file) = match &entry {
+            Ok(entry) => (entry.path(), entry.file_type().is_file()),
+            // A link to nowhere is left for the reader to name; a folder that cannot be looked into
+            // may hold granules that would be missed.
+            Err(error) => match error.path() {
+                Some(path) if path.is_symlink() => (path, true),
+                _ => anyhow::bail!("{}: {}", shown(), clean_text(&error.to_string())),
+            },
+        };
+        let below = path.strip_prefix(walk_root).unwrap_or(path);
+        if is_file && matcher.is_match(below) {
+            found.push(root.join(below));
+        }
+    }
     if found.is_empty() {
-        return Err(UsageError(format!("{text} matches no file")).into());
+        return Err(UsageError(format!("{} matches no file", shown())).into());
     }
     sort_naturally(&mut found);
     Ok(found)
@@ -355,7 +374,7 @@ mod tests {
 
     #[test]
     fn masks_beside_their_granules_are_no_granules() {
-        let folder = folder(&["a.nc", "a.mask.nc", "b-0f3.mask.nc"]);
+        let folder = folder(&["a.nc", "a.mask.nc", "b-0f3.mask.nc", "501+2_0f3.basis.nc"]);
         assert_eq!(expanded(&[folder.path().to_owned()], "").unwrap(), ["a.nc"]);
         let both = ["a.nc", "a.mask.nc"].map(|name| folder.path().join(name));
         assert_eq!(expanded(&both, "").unwrap(), ["a.nc"]);
@@ -369,7 +388,24 @@ mod tests {
         assert_eq!(found("*/g?.nc").unwrap(), ["g1.nc", "g2.nc"]);
         assert_eq!(found("**/*.nc").unwrap(), ["g1.nc", "g4.nc", "g2.nc"]);
         assert!(found("*.nc").unwrap_err().to_string().contains("matches no file"));
+        assert_eq!(found("b//./*.nc").unwrap(), ["g2.nc"]);
         assert!(found("[").unwrap_err().downcast_ref::<UsageError>().is_some());
+    }
+
+    #[test]
+    fn globs_go_below_odd_folders_pass_by_hidden_files_and_tell_of_links_to_nowhere() {
+        use std::os::unix::ffi::OsStrExt;
+        let folder = folder(&["br[1]/g1.nc", "a/.hidden.nc", "a/g2.nc"]);
+        let found = |pattern: &str| expanded(&[folder.path().join(pattern)], "");
+        assert_eq!(found("br[1]/*.nc").unwrap(), ["g1.nc"]);
+        assert_eq!(found("a/*.nc").unwrap(), ["g2.nc"]);
+        assert_eq!(found("a/.*.nc").unwrap(), [".hidden.nc"]);
+        std::os::unix::fs::symlink("/no/g3.nc", folder.path().join("a/g3.nc")).unwrap();
+        assert_eq!(found("a/*.nc").unwrap(), ["g2.nc", "g3.nc"]);
+        let odd = folder.path().join(OsStr::from_bytes(b"o\xff"));
+        std::fs::create_dir(&odd).unwrap();
+        std::fs::write(odd.join("g4.nc"), b"").unwrap();
+        assert_eq!(expanded(&[odd.join("*.nc")], "").unwrap(), ["g4.nc"]);
     }
 
     #[test]

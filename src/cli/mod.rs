@@ -45,7 +45,14 @@ pub use exit::Exit;
 /// A mask made here is a screening aid for retrieval runs, not a warning service. Decisions on
 /// ash, dust or gas for aviation, health or civil protection belong to the responsible authorities.
 #[derive(Debug, Parser)]
-#[command(name = "radsieve", version, max_term_width = 100)]
+#[command(
+    name = "radsieve",
+    version,
+    max_term_width = 100,
+    after_help = "Exit codes: 0 done (problems found in the data are reported, and still done); 2 wrong \
+        usage; 3 some of many inputs failed, each named; 4 nothing could be done; 128 + n ended by \
+        signal n."
+)]
 pub struct Arguments {
     #[command(subcommand)]
     command: Command,

@@ -8,6 +8,11 @@ use super::surroundings;
 
 /// What was typed.
 #[derive(Debug, clap::Args)]
+#[command(after_help = "Example:\n  \
+    RADSIEVE_PERSON=ada radsieve review 'granules/*.nc' --campaign spring\n\n\
+    RADSIEVE_PERSON names who decides, else the login name. Keys and limits of the campaign stand in \
+    its campaign.toml, a person's own keys in radsieve/settings.toml below XDG_CONFIG_HOME or \
+    ~/.config. NO_COLOR turns colours off. Inside, ? shows the keys and : takes commands.")]
 pub struct Arguments {
     #[command(flatten)]
     inputs: Inputs,

@@ -53,23 +53,33 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
     let mut granules = Vec::new();
     let mut bands: Vec<BandRows> = Vec::new();
     let mut rejected = 0;
+    let mut failed = 0;
     for file in &files {
-        let granule = opening.open(file)?;
+        let granule = match opening.open(file) {
+            Ok(granule) => granule,
+            Err(error) => {
+                say!("radsieve: {}", clean_text(&error.to_string()));
+                failed += 1;
+                continue;
+            }
+        };
         let shape = instrument_shape(&granule);
         let (_, first) =
             place.get_or_insert_with(|| (basis_path(campaign.folder(), &granule), shape.clone()));
         if *first != shape {
             let file = clean_text(&file.display().to_string());
-            let what = format!(
-                "{file} is of another instrument than the first file: {shape}, not {first}"
+            say!(
+                "radsieve: {file} is of another instrument than the first file, and left out: {shape}, \
+                 not {first}"
             );
-            return Err(UsageError(what).into());
+            failed += 1;
+            continue;
         }
         granule.fill(&Cancel::new(), &mut |_| {})?;
         // What the producer rejects is no example of a sound spectrum.
         let producer = Producer::of(&granule, &campaign.settings().quality);
         for problem in &producer.problems {
-            eprintln!("radsieve: {}: {problem}", clean_text(&file.display().to_string()));
+            say!("radsieve: {}: {problem}", clean_text(&file.display().to_string()));
         }
         rejected += producer.left_out.iter().filter(|left_out| **left_out).count();
         let rows = training_rows(&granule, &limits, &producer.left_out, each, &Cancel::new())?;
@@ -82,7 +92,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         granules.push(granule.name());
     }
     let Some((path, instrument)) = place else {
-        return Err(UsageError("name at least one file".into()).into());
+        return Ok(Exit::Failed);
     };
     let fitted = bands.iter().filter_map(|(name, all)| Some((name.clone(), fit_together(all)?)));
     let bases = SavedBases { instrument, granules, bands: fitted.collect(), file: String::new() };
@@ -111,7 +121,7 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
             "rejected_by_producer": rejected,
         });
         writeln!(out, "{answer}")?;
-        return Ok(Exit::Done);
+        return Ok(Exit::of_many(files.len() - failed, failed));
     }
     for (name, basis) in &bases.bands {
         let (name, scores) = (clean_text(name), &basis.scores);
@@ -123,5 +133,5 @@ pub fn run(arguments: Arguments) -> anyhow::Result<Exit> {
         writeln!(out, "{rejected} footprints that the producer rejects were not taken")?;
     }
     writeln!(out, "{}", clean_text(&path.display().to_string()))?;
-    Ok(Exit::Done)
+    Ok(Exit::of_many(files.len() - failed, failed))
 }

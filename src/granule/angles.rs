@@ -38,10 +38,13 @@ pub fn complete(geolocation: &mut Geolocation, grid: &FootprintGrid, problems: &
 /// azimuth beside it points on the negative side is not known, so it is worked out anew.
 fn take_sign_from_view(geolocation: &mut Geolocation, problems: &mut Vec<Problem>) {
     let Some(zenith) = &mut geolocation.view_zenith else { return };
-    if !zenith.iter().any(|angle| *angle < 0.0) {
+    // A zero that was rounded or packed may come out below itself.
+    const ROUNDED: f64 = 0.01;
+    let has_sign = zenith.iter().any(|angle| *angle < -ROUNDED);
+    zenith.iter_mut().for_each(|angle| *angle = angle.abs());
+    if !has_sign {
         return;
     }
-    zenith.iter_mut().for_each(|angle| *angle = angle.abs());
     geolocation.view_azimuth = None;
     geolocation.sources.retain(|source| source.field != "view_azimuth");
     let what =

@@ -155,7 +155,7 @@ fn epoch_seconds(text: &str) -> Option<f64> {
             continue;
         }
         seconds += match word.strip_prefix(['+', '-']) {
-            Some(zone) => clock(zone)? * if word.starts_with('-') { 1.0 } else { -1.0 },
+            Some(offset) => zone(offset)? * if word.starts_with('-') { 1.0 } else { -1.0 },
             None => clock(word)?,
         };
     }
@@ -174,13 +174,23 @@ fn with_blank_for_t(text: &str) -> String {
     out
 }
 
+/// `01:30`, `0130` or `1` east of Greenwich in seconds.
+fn zone(text: &str) -> Option<f64> {
+    let digits = text.len() == 4 && text.bytes().all(|byte| byte.is_ascii_digit());
+    match digits {
+        true => clock(&format!("{}:{}", &text[..2], &text[2..])),
+        false => clock(text),
+    }
+}
+
 /// `12:30:15.5` or a part of it in seconds.
 fn clock(text: &str) -> Option<f64> {
     let mut total = 0.0;
     let mut worth = 3600.0;
     for part in text.split(':') {
         let value: f64 = part.parse().ok()?;
-        if !(0.0..=60.0).contains(&value) || worth < 1.0 {
+        let most = if worth > 60.0 { 24.0 } else { 60.0 };
+        if !(0.0..=most).contains(&value) || worth < 1.0 {
             return None;
         }
         total += value * worth;
@@ -229,6 +239,16 @@ mod tests {
     }
 
     #[test]
+    fn zones_are_read_with_and_without_a_colon() {
+        let noon = unix("seconds since 1970-01-02 12:00:00", None, 0.0);
+        for zone in ["+01:00", "+0100", "+1", "+01"] {
+            let units = format!("seconds since 1970-01-02 12:00:00 {zone}");
+            assert_eq!(unix(&units, None, 0.0), noon - 3600.0, "{zone}");
+        }
+        assert_eq!(unix("seconds since 1970-01-02 12:00 -0330", None, 0.0), noon + 12_600.0);
+    }
+
+    #[test]
     fn counts_of_tai_agree_with_a_general_purpose_library() {
         // Source: astropy 8.0.2, differences of Time in scale utc and tai, for 2006-01-01 and
         // 2020-06-01: seconds since 1970, since 1993-01-01 UTC, since 1958-01-01 TAI.
@@ -254,6 +274,8 @@ mod tests {
             ("seconds since yesterday", None),
             ("seconds since 2000-13-01", None),
             ("seconds since 2000-01-01 25:61:61", None),
+            ("seconds since 2000-01-01 60:00", None),
+            ("seconds since 2000-01-01 00:00 +9900", None),
             ("days since 2000-01-01", Some("360_day")),
             ("days since 2000-01-01", Some("noleap")),
         ] {

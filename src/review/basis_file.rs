@@ -30,7 +30,7 @@ pub enum BasisFileError {
 
 /// Where the components for a granule's instrument lie in a campaign's folder.
 pub fn basis_path(folder: &Path, granule: &Granule) -> PathBuf {
-    folder.join(format!("basis_{}.nc", instrument_shape(granule)))
+    folder.join(format!("{}.basis.nc", instrument_shape(granule)))
 }
 
 /// The components for a granule's instrument, if the folder has some.

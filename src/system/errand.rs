@@ -13,19 +13,21 @@ static IDLE: Mutex<Vec<Sender<Errand>>> = Mutex::new(Vec::new());
 /// Has `work` done by another thread; nothing if it is not done within `limit`.
 ///
 /// A call into a file system whose server is gone cannot be ended from outside. The thread that is
-/// stuck in it stays behind until the call returns, and whoever asked goes on.
+/// stuck in it stays behind until the call returns, and whoever asked goes on. Where no thread can be
+/// started (`ulimit -u`), the work is done here, and no limit holds.
 pub fn within<Done: Send + 'static>(
     limit: Duration,
     work: impl FnOnce() -> Done + Send + 'static,
 ) -> Option<Done> {
     let (answer, done) = channel();
-    let errand = Box::new(move || {
+    let errand: Errand = Box::new(move || {
         // Nobody listens any more where it was given up.
         let _ = answer.send(work());
     });
-    let thread = match idle().pop() {
-        Some(thread) => thread,
-        None => start()?,
+    let waiting = idle().pop();
+    let Some(thread) = waiting.or_else(start) else {
+        errand();
+        return done.try_recv().ok();
     };
     thread.send(errand).ok()?;
     let done = done.recv_timeout(limit).ok()?;

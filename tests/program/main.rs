@@ -19,4 +19,5 @@ mod producer;
 mod samples;
 mod screen;
 mod spectrum;
+mod streams;
 mod tabulate;
