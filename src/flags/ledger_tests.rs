@@ -8,7 +8,7 @@ use jiff::Timestamp;
 use super::*;
 
 /// Longer than any disk of a test machine needs; a test that waits so long has failed.
-const PATIENCE: Duration = Duration::from_secs(20);
+pub(super) const PATIENCE: Duration = Duration::from_secs(20);
 
 pub(super) fn granule() -> GranuleIdentity {
     GranuleIdentity {
@@ -48,7 +48,7 @@ pub(super) fn judge(
     }
 }
 
-fn cloudy(footprints: std::ops::Range<usize>) -> Act {
+pub(super) fn cloudy(footprints: std::ops::Range<usize>) -> Act {
     Act::Flag {
         flag: "cloudy".to_owned(),
         footprints: FootprintSet::range(footprints),
@@ -56,31 +56,31 @@ fn cloudy(footprints: std::ops::Range<usize>) -> Act {
     }
 }
 
-struct Fixture {
-    dir: tempfile::TempDir,
+pub(super) struct Fixture {
+    pub(super) dir: tempfile::TempDir,
     campaign: Campaign,
 }
 
 impl Fixture {
-    fn new() -> Self {
+    pub(super) fn new() -> Self {
         let dir = tempfile::tempdir().unwrap();
         let campaign = Campaign::open_or_create(dir.path()).unwrap();
         Self { dir, campaign }
     }
 
-    fn writer(&self, person: &str) -> LedgerWriter {
+    pub(super) fn writer(&self, person: &str) -> LedgerWriter {
         LedgerWriter::start(&self.campaign, &granule(), &author(person), "0.1.0", time(0)).unwrap()
     }
 
-    fn read(&self) -> LedgerReading {
+    pub(super) fn read(&self) -> LedgerReading {
         read_ledgers(&self.campaign, &granule())
     }
 
-    fn folder(&self) -> PathBuf {
+    pub(super) fn folder(&self) -> PathBuf {
         self.dir.path().join("ledgers/lowen_001-0123456789ab")
     }
 
-    fn files(&self) -> Vec<PathBuf> {
+    pub(super) fn files(&self) -> Vec<PathBuf> {
         let Ok(entries) = std::fs::read_dir(self.folder()) else { return Vec::new() };
         let mut files: Vec<_> = entries.map(|entry| entry.unwrap().path()).collect();
         files.sort();
@@ -88,7 +88,7 @@ impl Fixture {
     }
 
     /// A ledger of three decisions, as text.
-    fn three_decisions(&self) -> (PathBuf, String) {
+    pub(super) fn three_decisions(&self) -> (PathBuf, String) {
         let mut writer = self.writer("anna");
         for at in 0..3 {
             writer.append(Origin::Person, cloudy(at..at + 1), None, time(at as i64));
@@ -319,83 +319,6 @@ fn a_decision_comes_after_those_its_writer_saw() {
     assert_eq!(second.clock, Some(time(0)));
     let state = FlagState::replay(20, &[], &fixture.read().decisions, &Vocabulary::released());
     assert_eq!(state.footprint_flags[0], 0);
-}
-
-#[test]
-fn a_folder_that_went_away_keeps_decisions_pending_until_it_is_back() {
-    let fixture = Fixture::new();
-    let mut writer = fixture.writer("anna");
-    let ledgers = fixture.dir.path().join("ledgers");
-    std::fs::remove_dir(&ledgers).unwrap();
-    std::fs::write(&ledgers, "in the way").unwrap();
-    let decision = writer.append(Origin::Person, cloudy(0..2), None, time(1));
-    let Some(LedgerEvent::Failed { pending, message }) = writer.wait_event(PATIENCE) else {
-        panic!("the failure is reported");
-    };
-    assert_eq!(pending, std::slice::from_ref(&decision.id));
-    assert!(message.contains("try again") && message.contains("stay pending"), "{message}");
-    assert_eq!(writer.pending().len(), 1);
-    std::fs::remove_file(&ledgers).unwrap();
-    writer.retry();
-    assert_eq!(writer.wait_event(PATIENCE), Some(LedgerEvent::Kept(decision.id.clone())));
-    assert_eq!(writer.pending(), []);
-    assert_eq!(fixture.read().decisions, [decision]);
-}
-
-#[test]
-fn closing_tells_what_is_not_on_the_disk() {
-    let fixture = Fixture::new();
-    let mut writer = fixture.writer("anna");
-    let ledgers = fixture.dir.path().join("ledgers");
-    std::fs::remove_dir(&ledgers).unwrap();
-    std::fs::write(&ledgers, "in the way").unwrap();
-    writer.append(Origin::Person, cloudy(0..2), None, time(1));
-    writer.append(Origin::Person, cloudy(2..3), None, time(2));
-    let not_kept = writer.close(PATIENCE).unwrap_err();
-    assert_eq!(not_kept.pending, 2);
-    assert!(not_kept.to_string().contains("2 decisions are not on the disk"), "{not_kept}");
-}
-
-/// A limit on file sizes stops a write in the middle of a line, as a full disk does. The limit is
-/// the process's, so the test runs in a child of its own.
-#[test]
-fn a_write_that_stops_half_way_is_taken_up_in_a_new_file() {
-    let program = std::env::current_exe().unwrap();
-    let output = std::process::Command::new(program)
-        .args(["--exact", "flags::ledger_tests::child_with_little_space", "--ignored"])
-        .output()
-        .unwrap();
-    let text = String::from_utf8_lossy(&output.stdout).into_owned();
-    assert!(output.status.success() && text.contains("1 passed"), "{text}");
-}
-
-#[test]
-#[ignore = "limits its whole process; run by a_write_that_stops_half_way_is_taken_up_in_a_new_file"]
-fn child_with_little_space() {
-    // The signal would end the process; handled, the write fails instead.
-    let seen = std::sync::Arc::new(std::sync::atomic::AtomicBool::new(false));
-    signal_hook::flag::register(signal_hook::consts::SIGXFSZ, seen).unwrap();
-    let fixture = Fixture::new();
-    let mut writer = fixture.writer("anna");
-    let first = writer.append(Origin::Person, cloudy(0..1), None, time(1));
-    assert_eq!(writer.wait_event(PATIENCE), Some(LedgerEvent::Kept(first.id.clone())));
-    let size = std::fs::metadata(&fixture.files()[0]).unwrap().len();
-    let (_, hard) = rlimit::Resource::FSIZE.get().unwrap();
-    // Room for a part of the next line, and for no header of a second file.
-    rlimit::Resource::FSIZE.set(size + 20, hard).unwrap();
-    let second = writer.append(Origin::Person, cloudy(1..2), None, time(2));
-    let event = writer.wait_event(PATIENCE);
-    let Some(LedgerEvent::Failed { message, .. }) = event else { panic!("{event:?}") };
-    assert!(message.contains("stay pending"), "{message}");
-    assert_eq!(std::fs::metadata(&fixture.files()[0]).unwrap().len(), size + 20);
-    rlimit::Resource::FSIZE.set(hard, hard).unwrap();
-    writer.retry();
-    assert_eq!(writer.wait_event(PATIENCE), Some(LedgerEvent::Kept(second.id.clone())));
-    writer.close(PATIENCE).unwrap();
-    let reading = fixture.read();
-    assert_eq!(reading.decisions, [first, second]);
-    assert_eq!(reading.problems.len(), 1, "the torn line is reported");
-    assert_eq!(fixture.files().len(), 2);
 }
 
 /// The document's lines are read as they stand.

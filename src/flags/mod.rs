@@ -12,6 +12,8 @@ mod campaign;
 mod campaign_settings;
 mod clopper_pearson;
 mod decision;
+#[cfg(test)]
+mod disk_trouble_tests;
 mod footprint_set;
 mod granule_state;
 mod history;
@@ -30,6 +32,8 @@ mod plane;
 mod protected_parts;
 mod quality_map;
 mod replay;
+#[cfg(test)]
+mod replay_properties;
 #[cfg(test)]
 mod replay_tests;
 mod review_state;

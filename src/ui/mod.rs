@@ -18,6 +18,7 @@ mod channel_flags;
 mod channels;
 pub mod colour;
 pub mod command;
+mod completion;
 mod deciding;
 mod doubting;
 mod draw;

@@ -4,7 +4,8 @@ use crate::flags::Scope;
 
 use super::app::App;
 use super::channel_flags;
-use super::command::{self, Command, Known};
+use super::command::{self, Command};
+use super::completion::{Known, completions};
 use super::deciding;
 use super::exporting;
 use super::jobs::Job;
@@ -62,7 +63,7 @@ pub fn press(app: &mut App, key: Key, mut prompt: LinePrompt) -> Vec<Job> {
         Code::Enter => return submit(app, prompt),
         Code::Tab | Code::BackTab if is_command => {
             let known = known(app);
-            prompt.complete(key.code == Code::Tab, |text| command::completions(text, &known));
+            prompt.complete(key.code == Code::Tab, |text| completions(text, &known));
         }
         Code::Up | Code::Down if is_command => {
             let older = key.code == Code::Up;
