@@ -22,10 +22,10 @@ mod tests {
 
     #[test]
     fn a_tilde_is_ones_own_folder_where_that_is_known() {
-        let home = || Some(OsString::from("/home/ada"));
+        let home = || Some(OsString::from("/people/ada"));
         for (text, path) in [
-            ("~/masks", "/home/ada/masks"),
-            ("~", "/home/ada"),
+            ("~/masks", "/people/ada/masks"),
+            ("~", "/people/ada"),
             ("masks/~/x", "masks/~/x"),
             ("~bo/masks", "~bo/masks"),
         ] {
