@@ -19,6 +19,8 @@ const LEAST_FREE: f64 = 0.05;
 const SURE: f64 = 6.0;
 /// A step is one channel's own if its neighbours have less than this share of it.
 const NEIGHBOURS_SHARE: f64 = 0.5;
+/// A step of more than this share of the limit is looked at anew.
+const HINT: f64 = 0.4;
 /// A channel with less leverage than this has taught the components nothing that matters here.
 const LEARNED: f64 = 0.15;
 
@@ -37,7 +39,8 @@ pub struct Step {
 ///
 /// A step that returns in some lines is common enough to make a component of its own, or to become part
 /// of one that goes along with it by chance. Channels of which components could have learned are therefore
-/// explained anew, by what they do within lines, where there is no step.
+/// explained anew, by what they do within lines, where there is no step; and so are those that step by
+/// less than the limit, for part of the step may be hidden.
 pub fn popping_channels(
     readings: &BandReadings<'_>,
     sample: &Sample,
@@ -50,10 +53,13 @@ pub fn popping_channels(
     let width = levels.of_channels.len();
     let mut findings = Vec::new();
     for at in 0..width {
-        let within = levels.may_be_learned(at).then(|| WithinLines::of(sample, fitted, grid, at));
+        let plain = levels.largest_step(at);
+        let hinted = plain.is_some_and(|step| step.value > HINT * limit.value);
+        let anew = hinted || levels.may_be_learned(at);
+        let within = anew.then(|| WithinLines::of(sample, fitted, grid, at));
         let step = match within.flatten() {
             Some(within) => within.largest_step(&levels.lines),
-            None => levels.largest_step(at),
+            None => plain,
         };
         let Some(Step { line, value, deviation }) = step else { continue };
         let beside = at.saturating_sub(1)..(at + 2).min(width);
