@@ -231,11 +231,11 @@ fn tell_end(app: &mut App) {
     );
     let Some(bench) = app.bench() else { return };
     let here = match bench.doubt.cases.len() {
-        0 => format!("nothing is left in doubt here; {sign} signs off"),
-        left => format!("{left} cases were left as they are; {previous} goes back"),
+        0 => format!("nothing is left in doubt: {sign} signs off"),
+        left => format!("{left} cases left as they are: {previous} goes back, {sign} signs off"),
     };
     let onward = app.tray.next_in_doubt(bench.entry).and_then(|entry| app.tray.entry(entry));
-    let onward = onward.map(|entry| format!("; {next} goes on to {}", entry.name));
+    let onward = onward.map(|entry| format!(", {next} goes on to {}", entry.name));
     app.say(here + &onward.unwrap_or_default());
 }
 

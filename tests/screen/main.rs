@@ -9,6 +9,7 @@ mod care;
 mod killed;
 mod main_job;
 mod memory;
+mod panes;
 mod terminal;
 
 use std::path::{Path, PathBuf};

@@ -182,6 +182,12 @@ impl Session {
         self.master = None;
     }
 
+    /// Whether the terminal was asked for every movement of the mouse.
+    pub fn tells_of_every_movement(&self) -> bool {
+        let parser = self.parser.lock().unwrap();
+        parser.screen().mouse_protocol_mode() == vt100::MouseProtocolMode::AnyMotion
+    }
+
     /// The program's process number.
     pub fn process(&self) -> u32 {
         self.child.process_id().unwrap()

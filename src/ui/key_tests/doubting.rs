@@ -30,7 +30,7 @@ fn a_key_goes_to_the_most_doubtful_case_and_selects_all_of_it() {
     trial.keys("Space");
     assert_eq!((trial.bench().cursor, selected(&trial)), (9, vec![9]));
     trial.keys("Space");
-    assert!(trial.message().starts_with("3 cases were left"), "{}", trial.message());
+    assert!(trial.message().starts_with("3 cases left as they are"), "{}", trial.message());
     trial.keys("Backspace");
     assert_eq!(selected(&trial), [25]);
     trial.keys("Space Space Space Space");
@@ -151,7 +151,7 @@ fn behind_the_last_case_the_next_granule_in_doubt_is_opened() {
     (0..2).for_each(|_| append_byte(&place.path("c.nc")));
     let mut trial = place.review(&names);
     trial.keys("Space y y y");
-    assert!(trial.message().starts_with("nothing is left in doubt here"), "{}", trial.message());
+    assert!(trial.message().starts_with("nothing is left in doubt: S signs off"), "{}", trial.message());
     assert!(trial.message().contains("Space goes on to b.nc"), "{}", trial.message());
     trial.keys("Space");
     assert_eq!((trial.granule().as_str(), selected(&trial)), ("b.nc", vec![10, 11]));
