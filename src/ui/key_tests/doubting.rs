@@ -151,7 +151,11 @@ fn behind_the_last_case_the_next_granule_in_doubt_is_opened() {
     (0..2).for_each(|_| append_byte(&place.path("c.nc")));
     let mut trial = place.review(&names);
     trial.keys("Space y y y");
-    assert!(trial.message().starts_with("nothing is left in doubt: S signs off"), "{}", trial.message());
+    assert!(
+        trial.message().starts_with("nothing is left in doubt: S signs off"),
+        "{}",
+        trial.message()
+    );
     assert!(trial.message().contains("Space goes on to b.nc"), "{}", trial.message());
     trial.keys("Space");
     assert_eq!((trial.granule().as_str(), selected(&trial)), ("b.nc", vec![10, 11]));
