@@ -10,7 +10,7 @@ fn start(folder: &Path) -> Session {
     let file = sample("ketter_desert");
     let arguments = ["review", file.to_str().unwrap(), "--campaign", "campaign"];
     let session = Session::start_with(folder, 80, 24, &arguments, &[]);
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     session
 }
 
@@ -65,7 +65,7 @@ fn every_size_of_the_terminal_is_survived() {
         session.settle();
     }
     session.expect("Field bt(900)");
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     session.keys("q");
     assert!(session.end().success());
 }
@@ -122,7 +122,7 @@ fn the_shell_is_there_while_the_review_is_stopped_and_the_review_comes_back_whol
         file.display(),
         campaign.display()
     ));
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     let stop_by_key = |session: &mut Session| session.keys("\x1a");
     let stop_by_signal = |_: &mut Session| {
         let reviews = reviews_of(folder.path());
@@ -138,7 +138,7 @@ fn the_shell_is_there_while_the_review_is_stopped_and_the_review_comes_back_whol
         session.expect("42 is here");
         session.keys("fg\r");
         session.expect("Field bt(900)");
-        session.expect("0 flagged ·");
+        session.expect("0 flagged");
     }
     session.keys("fc");
     session.expect("kept · 1 flagged");

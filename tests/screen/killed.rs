@@ -47,7 +47,7 @@ fn what_the_screen_showed_as_kept_is_on_the_disk_after_a_kill() {
     let file = sample("ketter_desert");
     let arguments = ["review", file.to_str().unwrap(), "--campaign", "campaign"];
     let mut session = Session::start_with(folder.path(), 160, 48, &arguments, &[]);
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     // Along the rows, there and back.
     let mut keys = String::new();
     for number in 0..TYPED {

@@ -29,7 +29,7 @@ fn start(folder: &Path, columns: u16, rows: u16, file: &Path) -> Session {
 /// flag is undone and redone, one is undone for good; the rest was looked at.
 fn decide_on_screen(session: &mut Session) {
     session.expect("Field bt(900)");
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     session.keys("f");
     session.expect("bad_spectrum");
     session.keys("c");
@@ -169,7 +169,7 @@ fn what_was_decided_and_where_one_was_survives_leaving() {
     let folder = tempfile::tempdir().unwrap();
     let file = sample("ketter_desert");
     let mut session = start(folder.path(), 80, 24, &file);
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     session.keys("jjjll");
     session.expect("Evidence (3, 2)");
     session.keys("fc");
@@ -183,6 +183,10 @@ fn what_was_decided_and_where_one_was_survives_leaving() {
     let mut again = Session::start_with(folder.path(), 80, 24, &arguments, &[]);
     again.expect("Evidence (3, 2)");
     again.expect("Field bt(1231)");
+    // Once the tests have run, how many cases are left comes before the counts; without the word about
+    // the terminal there is room for both.
+    again.expect("left · kept");
+    again.keys("\x1b");
     again.expect("1 flagged");
     again.keys("u");
     again.expect("0 flagged");
@@ -203,7 +207,7 @@ fn a_whole_tray_goes_on_past_a_file_that_hangs_the_library() {
     // The first granule that can be used is opened; the other one is named as what it is.
     session.expect("Tray 2 of 2");
     session.expect("can't be used");
-    session.expect("0 flagged ·");
+    session.expect("0 flagged");
     session.keys("fc");
     session.expect("kept · 1 flagged");
     session.keys("q");

@@ -33,9 +33,10 @@ pub fn draw(view: &StatusView<'_>, theme: &Theme, line: Rect, buffer: &mut Buffe
     let Some(line) = clip(line, buffer) else { return };
     let line = Rect { x: line.x + 1.min(line.width), width: line.width.saturating_sub(2), ..line };
     let gap = if theme.ascii { " | " } else { " · " };
-    // A long message stands for a long time: it does not push out the counts.
+    // A long message stands for a long time: it does not push out the counts. At 80 columns there is
+    // room for the cases left, that all is kept, and how many are flagged.
     let width = usize::from(line.width);
-    let message = view.message.width().min(width * 3 / 5);
+    let message = view.message.width().min(width * 11 / 20);
     let mut room = width.saturating_sub(message + usize::from(message > 0));
     let mut shown = 0;
     for (text, _) in view.facts {

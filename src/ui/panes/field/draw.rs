@@ -241,14 +241,21 @@ mod tests {
     }
 
     #[test]
-    fn corners_of_a_polygon_are_marked() {
+    fn a_polygon_shows_its_corners_and_its_sides() {
         let placement = Placement::unfold(&[6, 12], None);
         let values = ramp(72);
         let mut view = view(&placement, &values);
         view.polygon = &[0, 38];
         let mut screen = Screen::new(14, 8);
         draw(&view, &Theme { ascii: true, ..THEME }, screen.area(), &mut screen.buffer);
-        assert_eq!(screen.lines()[1..5], [" o", "", "", "   o"]);
+        assert_eq!(screen.lines()[1..5], [" o", "  .", "  .", "   o"]);
+        // With the cursor as the last corner it closes.
+        view.cursor = Some(11);
+        let mut screen = Screen::new(14, 8);
+        draw(&view, &Theme { ascii: true, ..THEME }, screen.area(), &mut screen.buffer);
+        let lines = screen.lines();
+        assert!(lines[1].starts_with(" o........."), "{lines:#?}");
+        assert!(lines[2].contains('.') && lines[4].starts_with("   o"), "{lines:#?}");
     }
 
     #[test]

@@ -1,4 +1,4 @@
-//! What lies over the map: the cursor with its ticks at the edges, pins, and the box being drawn.
+//! What lies over the map: the cursor with its ticks at the edges, pins, the box or polygon being drawn.
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
@@ -19,6 +19,7 @@ pub(super) fn draw(
     if let Some((one, other)) = view.corners {
         draw_box(view, geometry, (one, other), theme, buffer);
     }
+    draw_sides(view, geometry, theme, buffer);
     for corner in view.polygon {
         if let Some(cell) = geometry.cell_of(view.placement, *corner) {
             put_mark(cell, if theme.ascii { 'o' } else { '◇' }, theme, buffer);
@@ -76,6 +77,49 @@ fn draw_cursor(
     }
 }
 
+/// A piece of an outline, in a colour that stands out from the map below it.
+fn put_line(
+    view: &FieldView<'_>,
+    geometry: &Geometry,
+    place: (u16, u16),
+    sign: char,
+    theme: &Theme,
+    buffer: &mut Buffer,
+) {
+    let mut dots = [Dot::Nothing; 2];
+    for (slot, dot) in dots.iter_mut().zip(geometry.dots_of(place)) {
+        *slot = Dot::of(view, geometry, dot);
+    }
+    let (ground, light) = ground(dots, view.scale.palette, theme);
+    if let Some(cell) = buffer.cell_mut(place) {
+        set_sign(sign, theme.sign_on(ground.is_some(), light), ground, cell);
+    }
+}
+
+/// The sides of the polygon, from corner to corner, to the cursor and back to the first one.
+fn draw_sides(view: &FieldView<'_>, geometry: &Geometry, theme: &Theme, buffer: &mut Buffer) {
+    if view.polygon.is_empty() {
+        return;
+    }
+    let corners = view.polygon.iter().copied().chain(view.cursor);
+    let cells: Vec<(u16, u16)> =
+        corners.filter_map(|corner| geometry.cell_of(view.placement, corner)).collect();
+    let next = cells.iter().cycle().skip(1);
+    for cell in cells.iter().zip(next).flat_map(|(one, other)| between(*one, *other)) {
+        put_line(view, geometry, cell, if theme.ascii { '.' } else { '•' }, theme, buffer);
+    }
+}
+
+/// The cells on the straight line between two, both included.
+fn between(one: (u16, u16), other: (u16, u16)) -> impl Iterator<Item = (u16, u16)> {
+    let steps = one.0.abs_diff(other.0).max(one.1.abs_diff(other.1)).max(1);
+    let along = move |from: u16, to: u16, step: u16| {
+        let share = f64::from(step) / f64::from(steps);
+        (f64::from(from) + share * (f64::from(to) - f64::from(from))).round() as u16
+    };
+    (0..=steps).map(move |step| (along(one.0, other.0, step), along(one.1, other.1, step)))
+}
+
 /// The outline of the box between two footprints.
 fn draw_box(
     view: &FieldView<'_>,
@@ -89,16 +133,8 @@ fn draw_box(
     let (left, right) = (a.0.min(b.0), a.0.max(b.0));
     let (top, bottom) = (a.1.min(b.1), a.1.max(b.1));
     let [across, down, corner] = if theme.ascii { ['-', '|', '+'] } else { ['─', '│', '┼'] };
-    let mut outline = |x: u16, y: u16, sign: char| {
-        let mut dots = [Dot::Nothing; 2];
-        for (slot, dot) in dots.iter_mut().zip(geometry.dots_of((x, y))) {
-            *slot = Dot::of(view, geometry, dot);
-        }
-        let (ground, light) = ground(dots, view.scale.palette, theme);
-        if let Some(cell) = buffer.cell_mut((x, y)) {
-            set_sign(sign, theme.sign_on(ground.is_some(), light), ground, cell);
-        }
-    };
+    let mut outline =
+        |x: u16, y: u16, sign: char| put_line(view, geometry, (x, y), sign, theme, buffer);
     for x in left..=right {
         outline(x, top, across);
         outline(x, bottom, across);
