@@ -94,7 +94,7 @@ mod tests {
         for (width, line) in [
             (80, " flagged 128 as cloudy               2 pending · 128 flagged · 900 not assessed"),
             (50, " flagged 128 as cloudy    2 pending · 128 flagged"),
-            (24, " flagged 128 as cloudy"),
+            (24, " flagged 128… 2 pending"),
             (12, " flagged 1…"),
         ] {
             let mut screen = Screen::new(width, 1);

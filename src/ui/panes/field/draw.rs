@@ -254,7 +254,7 @@ mod tests {
         let mut screen = Screen::new(14, 8);
         draw(&view, &Theme { ascii: true, ..THEME }, screen.area(), &mut screen.buffer);
         let lines = screen.lines();
-        assert!(lines[1].starts_with(" o........."), "{lines:#?}");
+        assert!(lines[1].starts_with(">o..........X"), "{lines:#?}");
         assert!(lines[2].contains('.') && lines[4].starts_with("   o"), "{lines:#?}");
     }
 
