@@ -53,14 +53,12 @@ impl RingingWindows {
     /// The ringing of a residual in noise units, channel by channel; missing channels count as
     /// nothing.
     pub fn of(&self, residual: impl Fn(usize) -> f64) -> Ringing {
-        self.from_squares(
-            self.first.iter().map(|first| self.alternating(*first, &residual).powi(2)),
-        )
+        self.ringing_of(self.first.iter().map(|first| self.alternating(*first, &residual).powi(2)))
     }
 
     /// The same of a residual without gaps, faster.
     pub fn of_whole(&self, residual: &[f32]) -> Ringing {
-        self.from_squares(self.first.iter().map(|first| {
+        self.ringing_of(self.first.iter().map(|first| {
             let window = &residual[*first..first + WINDOW];
             let mut sums = [0.0_f64; LANES];
             let lanes = self.weights.chunks_exact(LANES).zip(window.chunks_exact(LANES));
@@ -73,7 +71,7 @@ impl RingingWindows {
         }))
     }
 
-    fn from_squares(&self, squares: impl Iterator<Item = f64>) -> Ringing {
+    fn ringing_of(&self, squares: impl Iterator<Item = f64>) -> Ringing {
         let squares: f64 = squares.sum();
         let mean = squares / self.first.len() as f64;
         let sum: f64 = self.weights.iter().map(|weight| weight.abs()).sum();
