@@ -5,6 +5,7 @@ use super::append_byte;
 use super::by_rule::{spot_check, two_of_three_screened};
 use super::one_granule;
 use crate::flags::{Campaign, GranuleState};
+use crate::ui::event::Event;
 use crate::ui::overlay::Overlay;
 use crate::ui::trial::{Place, Trial};
 
@@ -97,7 +98,13 @@ fn sign_offs_by_rule_are_written_first() {
     spot_check(&mut trial);
     trial.keys("*");
     press(&mut trial, "y q");
+    // What was decided on the table is on the disk first.
+    while trial.app.pending() > 0 {
+        std::thread::sleep(std::time::Duration::from_millis(1));
+        trial.event(Event::LedgerMoved);
+    }
     assert_eq!(trial.app.ended, None);
+    assert!(trial.app.owed.words().starts_with("writing the sign-off of"));
     trial.settle();
     assert_eq!(trial.app.ended, Some(0));
     let again = place.review(&names);
