@@ -1,6 +1,6 @@
 //! What lies behind the screen: the granules, what the tests say of them, the truth, the ledgers.
 
-use std::path::PathBuf;
+use std::path::Path;
 
 use radsieve::flags::{
     Campaign, FlagState, GranuleIdentity, ReviewState, Vocabulary, read_ledgers,
@@ -29,7 +29,7 @@ pub struct Granule {
 
 impl Granule {
     /// Opens and screens a granule.
-    pub fn open(file: &PathBuf, rulebook: &Rulebook) -> Result<Granule, Mishap> {
+    pub fn open(file: &Path, rulebook: &Rulebook) -> Result<Granule, Mishap> {
         let opening = Opening::new(ReaderProgram::new(env!("CARGO_BIN_EXE_radsieve")));
         let review = Review::open(&opening, file)?;
         let screened = review.screen(rulebook, &Cancel::new())?;

@@ -61,7 +61,11 @@ fn main() -> Result<(), Mishap> {
     let came = review::done(&files, &reviewed, &granules)?;
     let campaigns = (Campaign::open(&tests)?, Campaign::open(&reviewed)?);
     let tables = tables::all(&granules, (&campaigns.0, &campaigns.1), &came);
-    if write { put(&tables) } else { Ok(print!("{tables}")) }
+    if write {
+        return put(&tables);
+    }
+    print!("{tables}");
+    Ok(())
 }
 
 /// The tests decide, as they do in a batch.
