@@ -1,5 +1,7 @@
 //! Channels that jump between levels.
 
+use rayon::prelude::*;
+
 use super::channels::subject;
 use super::finding::{Check, Finding, Limit};
 use super::grid::ScanGrid;
@@ -7,7 +9,7 @@ use super::limits::HealthLimits;
 use super::readings::BandReadings;
 use super::sample::Sample;
 use super::within_lines::WithinLines;
-use crate::screening::unusual::Fitted;
+use crate::screening::unusual::{Along, Fitted};
 
 /// Residuals count for no more than this in the level of a line, so that spikes do not make one.
 const MOST_NOISES: f64 = 8.0;
@@ -51,17 +53,17 @@ pub fn popping_channels(
     let limit = Limit::of(limits, "popping_step");
     let levels = Levels::of(sample, fitted, grid);
     let width = levels.of_channels.len();
-    let mut findings = Vec::new();
-    for at in 0..width {
+    let along = Along::of(&sample.rows, &fitted.basis);
+    let finding = |at: usize| {
         let plain = levels.largest_step(at);
         let hinted = plain.is_some_and(|step| step.value > HINT * limit.value);
         let anew = hinted || levels.may_be_learned(at);
-        let within = anew.then(|| WithinLines::of(sample, fitted, grid, at));
+        let within = anew.then(|| WithinLines::of(sample, &along, grid, at));
         let step = match within.flatten() {
             Some(within) => within.largest_step(&levels.lines),
             None => plain,
         };
-        let Some(Step { line, value, deviation }) = step else { continue };
+        let Step { line, value, deviation } = step?;
         let beside = at.saturating_sub(1)..(at + 2).min(width);
         let alone = beside
             .filter(|one| *one != at && !levels.may_be_learned(*one))
@@ -71,10 +73,11 @@ pub fn popping_channels(
             let finding =
                 limit.finding(Check::PoppingChannel, subject, Some(readings.number), value);
             let line = levels.lines[line];
-            findings.push(finding.saying(format!("between lines {line} and the next")));
+            return Some(finding.saying(format!("between lines {line} and the next")));
         }
-    }
-    findings
+        None
+    };
+    (0..width).into_par_iter().filter_map(finding).collect()
 }
 
 /// For each channel the level of each line with enough footprints, in units of the noise.

@@ -6,7 +6,7 @@ use faer::{Mat, Side};
 use super::grid::ScanGrid;
 use super::popping::Step;
 use super::sample::Sample;
-use crate::screening::unusual::Fitted;
+use crate::screening::unusual::Along;
 use crate::spectral::{deviation_from_zero, median};
 
 /// Pairs that differ by more deviations than this do not count.
@@ -34,16 +34,12 @@ pub struct WithinLines {
 
 impl WithinLines {
     /// One of the rows' channels; `None` where lines have no pairs, or pairs say nothing.
-    pub fn of(sample: &Sample, fitted: &Fitted, grid: &ScanGrid, channel: usize) -> Option<Self> {
+    pub fn of(sample: &Sample, along: &Along<'_>, grid: &ScanGrid, channel: usize) -> Option<Self> {
         let rows = &sample.rows;
         if grid.positions < 2 || rows.pairs.is_empty() {
             return None;
         }
-        let own = rows.channels[channel];
-        let others: Vec<usize> =
-            rows.channels.iter().copied().filter(|other| *other != own).collect();
-        let basis = fitted.basis.restricted(&others);
-        let along = basis.along(rows);
+        let along = along.without(channel);
         let values: Vec<f64> = rows.column(channel).collect();
         let differences: Vec<(Vec<f64>, f64)> = rows
             .pairs
@@ -53,7 +49,7 @@ impl WithinLines {
                 (along, values[*one] - values[*other])
             })
             .collect();
-        let (weights, covariance, deviation) = weights(&differences, basis.components())?;
+        let (weights, covariance, deviation) = weights(&differences, along[0].len())?;
         let predicted = |along: &[f64]| along.iter().zip(&weights).map(|(a, w)| a * w).sum::<f64>();
         let rest = sample.footprints.iter().zip(values).zip(&along);
         Some(Self {

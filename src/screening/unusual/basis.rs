@@ -1,8 +1,8 @@
 //! What spectra of one band are made of: mean, noise, principal components, and how well they fit.
 
-use rayon::prelude::*;
-
-use super::fit::Rows;
+/// A component that is shorter than this in the channels looked at lived in the others, and has nothing
+/// to say.
+pub(super) const LIVED_ELSEWHERE: f64 = 0.01;
 
 /// The components of a band, and how well they rebuild the spectra that they were found in.
 #[derive(Debug, Clone, PartialEq)]
@@ -59,7 +59,7 @@ impl Basis {
         (self.scores.mean + deviations * self.scores.deviation).max(1.0)
     }
 
-    fn component(&self, number: usize) -> &[f64] {
+    pub(super) fn component(&self, number: usize) -> &[f64] {
         let channels = self.channels.len();
         &self.vectors[number * channels..][..channels]
     }
@@ -122,23 +122,6 @@ impl Basis {
         Some((filled, missing))
     }
 
-    /// What lies along each component of rows that have all its channels, in noise units: for each row one
-    /// number for each component.
-    pub fn along(&self, rows: &Rows) -> Vec<Vec<f64>> {
-        let place = |channel: &usize| rows.channels.iter().position(|one| one == channel);
-        let places: Vec<usize> = self.channels.iter().filter_map(place).collect();
-        let of_row = |row: &[f64]| {
-            let values = places.iter().zip(self.mean.iter().zip(&self.noise));
-            let normal: Vec<f64> =
-                values.map(|(place, (mean, noise))| (row[*place] - mean) / noise).collect();
-            let along = |number| -> f64 {
-                self.component(number).iter().zip(&normal).map(|(a, b)| a * b).sum()
-            };
-            (0..self.components()).map(along).collect()
-        };
-        rows.radiances.par_chunks_exact(rows.channels.len().max(1)).map(of_row).collect()
-    }
-
     /// The same components seen through fewer channels (places in the band): what is left of them is
     /// made orthonormal again, so that a projection fits them to these channels by least squares.
     pub fn restricted(&self, channels: &[usize]) -> Basis {
@@ -157,8 +140,7 @@ impl Basis {
                 }
             }
             let length = vector.iter().map(|value| value * value).sum::<f64>().sqrt();
-            // A component that lived in the other channels has nothing to say here.
-            if length > 0.01 {
+            if length > LIVED_ELSEWHERE {
                 vector.iter_mut().for_each(|value| *value /= length);
                 vectors.push(vector);
                 variances.push(self.variances[number]);

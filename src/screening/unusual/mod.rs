@@ -1,5 +1,6 @@
 //! What a granule's spectra are made of, and which of them are unlike the others (T20).
 
+mod along;
 mod basis;
 mod components;
 mod fit;
@@ -9,6 +10,7 @@ mod noise_of_rows;
 mod residuals;
 mod saved;
 
+pub use along::Along;
 pub use basis::{Basis, TrainingScores, score};
 pub use fit::{Fitted, Rows, fit, judged_by};
 pub use noise_of_rows::pair_deviations;
