@@ -13,6 +13,9 @@ const ANGLES: [f64; 5] = [0.0, 30.0, 45.0, 55.0, 62.0];
 /// Clouds are looked for below this pressure only, hPa.
 pub const LOWEST_PRESSURE: f64 = 60.0;
 
+/// How far the temperatures of a standard atmosphere may be wrong, K.
+pub const STANDARD_ERROR: f64 = 4.0;
+
 /// Levels of air and what they let pass.
 #[derive(Debug)]
 pub struct Air {
@@ -24,22 +27,15 @@ pub struct Air {
     pub tropopause: usize,
     /// By angle, then interval, then level: transmittance from the level to space.
     transmittances: Vec<Vec<Vec<f64>>>,
+    /// By way of being wrong, then interval, then level: black-body radiance. The first way is none.
+    black: Vec<Vec<Vec<f64>>>,
     /// By angle, then interval: radiance under clear sky over black ground as warm as the air there.
     clear: Vec<Vec<f64>>,
 }
 
-/// Transmittances and clear radiances under one angle.
-#[derive(Debug, Clone)]
-pub struct Slant {
-    /// By interval, then level.
-    pub transmittances: Vec<Vec<f64>>,
-    /// By interval, mW m-2 sr-1 (cm-1)-1.
-    pub clear: Vec<f64>,
-}
-
 impl Air {
-    /// Computes the transmittances of an atmosphere.
-    pub fn of(air: &Atmosphere) -> Air {
+    /// Computes the transmittances of an atmosphere whose temperatures may be wrong by `error`, K.
+    pub fn of(air: &Atmosphere, error: f64) -> Air {
         let levels: Vec<_> =
             air.levels().iter().take_while(|level| level.pressure >= LOWEST_PRESSURE).collect();
         let channels: Vec<Channel> = (0..INTERVALS.len())
@@ -71,8 +67,10 @@ impl Air {
         let temperatures: Vec<f64> = levels.iter().map(|level| level.temperature).collect();
         let coldest = (0..temperatures.len())
             .min_by(|one, other| temperatures[*one].total_cmp(&temperatures[*other]));
+        let pressures: Vec<f64> = levels.iter().map(|level| level.pressure).collect();
         Air {
-            pressures: levels.iter().map(|level| level.pressure).collect(),
+            black: black(&pressures, &temperatures, error),
+            pressures,
             tropopause: coldest.unwrap_or(0),
             temperatures,
             transmittances,
@@ -100,26 +98,60 @@ impl Air {
         if let Some(air) = cell.get() {
             return air;
         }
-        let air = Air::of(&Atmosphere::new(standard, &Changes::default()));
+        let air = Air::of(&Atmosphere::new(standard, &Changes::default()), STANDARD_ERROR);
         cell.get_or_init(|| air)
     }
 
-    /// What is seen under a view zenith angle, degrees.
-    pub fn slant(&self, zenith: f64) -> Slant {
-        let secant = |angle: f64| 1.0 / angle.to_radians().cos();
-        let last = ANGLES.len() - 1;
-        let far = ANGLES.partition_point(|angle| *angle < zenith).clamp(1, last);
-        let (near, beyond) = (secant(ANGLES[far - 1]), secant(ANGLES[far]));
-        let share = ((secant(zenith.min(ANGLES[last])) - near) / (beyond - near)).clamp(0.0, 1.0);
-        let mix = |one: &Vec<f64>, other: &Vec<f64>| -> Vec<f64> {
-            one.iter().zip(other).map(|(one, other)| one + share * (other - one)).collect()
-        };
+    /// Transmittances under a view zenith angle, degrees: by interval, then level.
+    pub fn transmittances(&self, zenith: f64) -> Vec<Vec<f64>> {
+        let (far, share) = between(zenith);
         let (one, other) = (&self.transmittances[far - 1], &self.transmittances[far]);
-        Slant {
-            transmittances: one.iter().zip(other).map(|(one, other)| mix(one, other)).collect(),
-            clear: mix(&self.clear[far - 1], &self.clear[far]),
-        }
+        one.iter().zip(other).map(|(one, other)| mix(one, other, share)).collect()
     }
+
+    /// By interval, radiance under clear sky over black ground as warm as the air there under a view
+    /// zenith angle, degrees; mW m-2 sr-1 (cm-1)-1.
+    pub fn clear(&self, zenith: f64) -> Vec<f64> {
+        let (far, share) = between(zenith);
+        mix(&self.clear[far - 1], &self.clear[far], share)
+    }
+
+    /// By way in which the temperatures may be wrong, then interval, then level: black-body radiance,
+    /// mW m-2 sr-1 (cm-1)-1. The first way is not to be wrong.
+    pub fn black(&self) -> &[Vec<Vec<f64>>] {
+        &self.black
+    }
+}
+
+/// The angle beyond a view zenith angle, and how near it is to that one.
+fn between(zenith: f64) -> (usize, f64) {
+    let secant = |angle: f64| 1.0 / angle.to_radians().cos();
+    let last = ANGLES.len() - 1;
+    let far = ANGLES.partition_point(|angle| *angle < zenith).clamp(1, last);
+    let (near, beyond) = (secant(ANGLES[far - 1]), secant(ANGLES[far]));
+    let share = ((secant(zenith.min(ANGLES[last])) - near) / (beyond - near)).clamp(0.0, 1.0);
+    (far, share)
+}
+
+fn mix(one: &[f64], other: &[f64], share: f64) -> Vec<f64> {
+    one.iter().zip(other).map(|(one, other)| one + share * (other - one)).collect()
+}
+
+/// Black-body radiances with right temperatures, with all of them off by `error`, and with those above
+/// too warm and those below too cold, turning at about 600 hPa.
+fn black(pressures: &[f64], temperatures: &[f64], error: f64) -> Vec<Vec<Vec<f64>>> {
+    let tilt = |pressure: f64| error * ((1000.0 / pressure).ln() / 0.5 - 1.0).clamp(-1.0, 1.0);
+    let ways: [&dyn Fn(f64) -> f64; 3] = [&|_| 0.0, &|_| error, &tilt];
+    let of = |way: &&dyn Fn(f64) -> f64, interval: usize| -> Vec<f64> {
+        let levels = temperatures.iter().zip(pressures);
+        let black = |(temperature, pressure): (&f64, &f64)| {
+            planck(middle(interval), temperature + way(*pressure))
+        };
+        levels.map(black).collect()
+    };
+    ways.iter()
+        .map(|way| (0..INTERVALS.len()).map(|interval| of(way, interval)).collect())
+        .collect()
 }
 
 #[cfg(test)]
@@ -143,8 +175,8 @@ mod tests {
     #[test]
     fn the_sum_over_levels_is_what_an_opaque_cloud_takes() {
         let air = Atmosphere::new(Standard::MidlatitudeSummer, &Changes::default());
-        let own = Air::of(&air);
-        let slant = own.slant(0.0);
+        let own = Air::of(&air, STANDARD_ERROR);
+        let (transmittances, clear) = (own.transmittances(0.0), own.clear(0.0));
         let at = own.pressures.iter().position(|pressure| *pressure < 350.0).unwrap();
         let height = air.levels()[at].height;
         let view = View { zenith_angles: vec![0.0], sun_zenith: None, cloud_heights: vec![height] };
@@ -156,10 +188,9 @@ mod tests {
             let above = &columns(&air, &[channel], &view)[0].above[0];
             let black = planck(middle(interval), own.temperatures[at]);
             let cloudy = f64::from(above.emission[0]) + f64::from(above.transmittance[0]) * black;
-            let taken = cloudy - slant.clear[interval];
+            let taken = cloudy - clear[interval];
             let sum =
-                overcast(middle(interval), &own.temperatures, &slant.transmittances[interval], 0.0)
-                    [at];
+                overcast(middle(interval), &own.temperatures, &transmittances[interval], 0.0)[at];
             assert!((sum / taken - 1.0).abs() < 0.04, "{interval}: {sum} {taken}");
         }
     }

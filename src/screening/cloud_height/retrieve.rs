@@ -4,11 +4,11 @@ use std::sync::OnceLock;
 
 use rayon::prelude::*;
 
-use super::air::{Air, Slant};
+use super::air::Air;
 use super::clear::{Layout, clear_around, warmest_around};
 use super::intervals::{INTERVALS, PAIRS, WINDOW, middle};
 use super::profile::Profile;
-use super::slicing::{at_pressure, overcast, pressure};
+use super::slicing::{at_pressure, overcast_black, pressure};
 use crate::granule::Channel;
 use crate::layers::{Expression, Input, LayerUnit, Names, Retrieval, Retrieved};
 use crate::spectral::{brightness_temperature_or_nan, planck};
@@ -28,8 +28,7 @@ const LOWEST_CLOUD: f64 = 700.0;
 const LARGEST_ERROR: f64 = 150.0;
 /// Pairs that differ by more than so many standard deviations see no single layer.
 const DISAGREEMENT: f64 = 3.0;
-/// How far the temperatures of the air may be wrong, K: of a standard atmosphere, of a given one.
-const STANDARD_ERROR: f64 = 4.0;
+/// How far the temperatures of a given profile may be wrong, K.
 const GIVEN_ERROR: f64 = 1.0;
 /// Effective amounts above this contradict the height, for nothing covers more than everything.
 const LARGEST_AMOUNT: f64 = 1.15;
@@ -66,15 +65,11 @@ impl CloudHeight {
         match &self.profile {
             // As for the standard atmospheres, never computed while the cell is locked.
             Some(profile) => self.own.get().unwrap_or_else(|| {
-                let air = Air::of(&profile.air);
+                let air = Air::of(&profile.air, GIVEN_ERROR);
                 self.own.get_or_init(|| air)
             }),
             None => Air::nearest(latitude, season),
         }
-    }
-
-    fn temperature_error(&self) -> f64 {
-        if self.profile.is_some() { GIVEN_ERROR } else { STANDARD_ERROR }
     }
 }
 
@@ -158,9 +153,9 @@ impl Scene<'_> {
         self.heights.air(self.input(LATITUDE, at), self.input(SEASON, at))
     }
 
-    fn slant(&self, at: usize) -> Slant {
+    fn zenith(&self, at: usize) -> f64 {
         let zenith = self.input(ZENITH, at);
-        self.air(at).slant(if zenith.is_nan() { USUAL_ZENITH } else { zenith })
+        if zenith.is_nan() { USUAL_ZENITH } else { zenith }
     }
 
     fn clouds(&self, layout: &Layout, footprints: usize) -> Vec<Cloud> {
@@ -174,7 +169,7 @@ impl Scene<'_> {
         let departures: Vec<Vec<f64>> = (0..footprints)
             .into_par_iter()
             .map(|at| {
-                let calculated = self.slant(at).clear;
+                let calculated = self.air(at).clear(self.zenith(at));
                 (0..INTERVALS.len())
                     .map(|place| self.input(place, at) - calculated[place])
                     .collect()
@@ -211,21 +206,20 @@ impl Scene<'_> {
 
     /// The best of the pairs.
     fn cloud(&self, at: usize, departures: &[f64], around: &Around) -> Option<Cloud> {
-        let (air, slant) = (self.air(at), self.slant(at));
+        let air = self.air(at);
         let forcing: Vec<f64> = (0..INTERVALS.len())
             .map(|interval| departures[interval] - around.departures[interval].0)
             .collect();
         // The footprint's own noise and that of the clear ones, whose spread is noise and scene.
         let error = |interval: usize| 1.5 * around.departures[interval].1;
         let counts = |interval: usize| forcing[interval] < -SIGNIFICANT * error(interval);
-        let mut modes = vec![Curves::of(air, &slant, &around.departures, |_| 0.0)];
-        let size = self.heights.temperature_error();
-        modes.push(Curves::of(air, &slant, &around.departures, |_| size));
-        // Warmer above and colder below, turning at about 600 hPa.
-        let tilt = |pressure: f64| size * ((1000.0 / pressure).ln() / 0.5 - 1.0).clamp(-1.0, 1.0);
-        modes.push(Curves::of(air, &slant, &around.departures, tilt));
-        let candidates = PAIRS.iter().filter(|pair| counts(pair.0) && counts(pair.1));
-        let heights = candidates.filter_map(|(one, other)| {
+        let candidates: Vec<_> =
+            PAIRS.iter().filter(|pair| counts(pair.0) && counts(pair.1)).collect();
+        if candidates.is_empty() {
+            return None;
+        }
+        let modes = Curves::of(air, self.zenith(at), &around.departures);
+        let heights = candidates.into_iter().filter_map(|(one, other)| {
             let solve = |mode: &Curves, shift: (f64, f64)| {
                 let ratio = (forcing[*one] + shift.0) / (forcing[*other] + shift.1);
                 let curves = (&mode.curves[*one][..], &mode.curves[*other][..]);
@@ -263,25 +257,22 @@ struct Curves {
 }
 
 impl Curves {
-    /// With temperatures that are off by `shift` of the pressure (hPa), K. The ground is as warm as
-    /// the clear window says.
-    fn of(
-        air: &Air,
-        slant: &Slant,
-        departures: &[(f64, f64)],
-        shift: impl Fn(f64) -> f64,
-    ) -> Curves {
-        let levels = air.temperatures.iter().zip(&air.pressures);
-        let temperatures: Vec<f64> =
-            levels.map(|(temperature, pressure)| temperature + shift(*pressure)).collect();
-        let passes = slant.transmittances[WINDOW][0].max(0.05);
-        let black = planck(middle(WINDOW), air.temperatures[0]) + departures[WINDOW].0 / passes;
-        let ground = brightness_temperature_or_nan(middle(WINDOW), black);
-        let curve = |interval: usize| {
-            let at = middle(interval);
-            let jump = planck(at, ground) - planck(at, temperatures[0]);
-            overcast(at, &temperatures, &slant.transmittances[interval], jump)
+    /// For each way in which the air's temperatures may be wrong, the first of which is none. The ground
+    /// is as warm as the clear window says.
+    fn of(air: &Air, zenith: f64, departures: &[(f64, f64)]) -> Vec<Curves> {
+        let transmittances = air.transmittances(zenith);
+        let passes = transmittances[WINDOW][0].max(0.05);
+        let window = air.black()[0][WINDOW][0] + departures[WINDOW].0 / passes;
+        let ground = brightness_temperature_or_nan(middle(WINDOW), window);
+        let grounds: Vec<f64> =
+            (0..INTERVALS.len()).map(|interval| planck(middle(interval), ground)).collect();
+        let curves = |black: &Vec<Vec<f64>>| {
+            let curve = |interval: usize| {
+                let jump = grounds[interval] - black[interval][0];
+                overcast_black(&black[interval], &transmittances[interval], jump)
+            };
+            Curves { curves: (0..INTERVALS.len()).map(curve).collect() }
         };
-        Curves { curves: (0..INTERVALS.len()).map(curve).collect() }
+        air.black().iter().map(curves).collect()
     }
 }

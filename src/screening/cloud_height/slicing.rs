@@ -20,12 +20,19 @@ pub fn overcast(
     transmittances: &[f64],
     jump: f64,
 ) -> Vec<f64> {
-    let black = |level: usize| planck(wavenumber, temperatures[level]);
+    let black: Vec<f64> =
+        temperatures.iter().map(|temperature| planck(wavenumber, *temperature)).collect();
+    overcast_black(&black, transmittances, jump)
+}
+
+/// The same where the black-body radiances of the levels are known already.
+pub fn overcast_black(black: &[f64], transmittances: &[f64], jump: f64) -> Vec<f64> {
     let mut sum = -jump * transmittances.first().copied().unwrap_or(0.0);
-    let mut all = vec![sum];
-    for level in 1..temperatures.len() {
+    let mut all = Vec::with_capacity(black.len());
+    all.push(sum);
+    for level in 1..black.len() {
         let passes = 0.5 * (transmittances[level - 1] + transmittances[level]);
-        sum += passes * (black(level) - black(level - 1));
+        sum += passes * (black[level] - black[level - 1]);
         all.push(sum);
     }
     all
