@@ -86,6 +86,7 @@ fn begin_interval(app: &mut App) -> Vec<Job> {
 
 /// Picks all channels whose measured noise is more than `factor` times what it should be.
 pub fn over_noise(app: &mut App, factor: f64) -> Vec<Job> {
+    let flag = app.keymap.hint(Action::FlagChannels);
     let Some(bench) = app.bench_mut() else { return no_granule(app) };
     let Some(examined) = bench.tests.screened.as_deref().and_then(|one| one.examined.as_ref())
     else {
@@ -108,10 +109,12 @@ pub fn over_noise(app: &mut App, factor: f64) -> Vec<Job> {
     };
     if channels.is_empty() {
         bench.drop_channel_pick();
+        app.say(words);
     } else {
-        bench.channel_pick = ChannelPick { from: None, named: Some((channels, words.clone())) };
+        let said = format!("{words}; {flag} flags");
+        bench.channel_pick = ChannelPick { from: None, named: Some((channels, words)) };
+        app.say(said);
     }
-    app.say(words);
     Vec::new()
 }
 
