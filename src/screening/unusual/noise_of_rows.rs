@@ -60,19 +60,22 @@ pub fn shape(rows: &Rows, residuals: &[f64]) -> NoiseShape {
         let size = |(one, other): (&f64, &f64)| f64::clamp(one - other, -5.0, 5.0);
         one.iter().zip(other).map(size).map(|one| if one.is_nan() { 0.0 } else { one }).collect()
     };
-    let differences: Vec<Vec<f64>> = rows.pairs.iter().map(clipped).collect();
+    let differences: Vec<Vec<f64>> = rows.pairs.par_iter().map(clipped).collect();
     NoiseShape::measured(|lag| {
-        let (mut products, mut squares) = (0.0, 0.0);
         let together: Vec<bool> = (0..width.saturating_sub(lag))
             .map(|first| rows.adjacent[first..first + lag].iter().all(|adjacent| *adjacent))
             .collect();
-        for row in &differences {
+        let of_row = |row: &Vec<f64>| {
             let both = row.iter().zip(row.iter().skip(lag)).zip(&together);
-            for ((one, other), _) in both.filter(|(_, together)| **together) {
-                products += one * other;
-                squares += 0.5 * (one * one + other * other);
-            }
-        }
+            let both = both.filter(|(_, together)| **together).map(|(both, _)| both);
+            both.fold((0.0, 0.0), |(products, squares), (one, other)| {
+                (products + one * other, squares + 0.5 * (one * one + other * other))
+            })
+        };
+        // Row by row and then together, so that threads do not change the sum.
+        let sums: Vec<(f64, f64)> = differences.par_iter().map(of_row).collect();
+        let (products, squares) =
+            sums.iter().fold((0.0, 0.0), |sum, row| (sum.0 + row.0, sum.1 + row.1));
         (squares > 0.0).then(|| products / squares)
     })
 }
