@@ -309,10 +309,14 @@ fn matches_of(pattern: &Path) -> anyhow::Result<Vec<PathBuf>> {
         let (path, is_file) = match &entry {
             Ok(entry) => (entry.path(), entry.file_type().is_file()),
             // A link to nowhere is left for the reader to name; a folder that cannot be looked into
-            // may hold granules that would be missed.
+            // may hold granules, so it is told.
             Err(error) => match error.path() {
-                Some(path) if path.is_symlink() => (path, true),
-                _ => anyhow::bail!("{}: {}", shown(), clean_text(&error.to_string())),
+                Some(path) if path.is_symlink() && !path.exists() => (path, true),
+                _ if error.depth() == 0 => continue,
+                _ => {
+                    say!("radsieve: {}: {}", shown(), clean_text(&error.to_string()));
+                    continue;
+                }
             },
         };
         let below = path.strip_prefix(walk_root).unwrap_or(path);

@@ -62,14 +62,25 @@ pub fn outlive_the_limit_on_file_sizes() {
 pub fn leave_nothing_half_written() {
     use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM};
     use signal_hook::iterator::Signals;
+    // One that whoever started the program wants ignored (`nohup`, `&` in a script) stays ignored.
+    let ignored = ignored_signals();
+    let heard = [SIGHUP, SIGINT, SIGTERM].into_iter().filter(|signal| !ignored.contains(signal));
     // Where the signals cannot be heard, they end the program all the same.
-    let Ok(mut signals) = Signals::new([SIGHUP, SIGINT, SIGTERM]) else { return };
+    let Ok(mut signals) = Signals::new(heard) else { return };
     std::thread::spawn(move || {
         for signal in signals.forever() {
             remove_unfinished();
             let _ = signal_hook::low_level::emulate_default_handler(signal);
         }
     });
+}
+
+/// The signals that this program was started to ignore; none where the system does not tell.
+fn ignored_signals() -> Vec<i32> {
+    let status = std::fs::read_to_string("/proc/self/status").unwrap_or_default();
+    let mask = status.lines().find_map(|line| line.strip_prefix("SigIgn:"));
+    let mask = mask.and_then(|mask| u64::from_str_radix(mask.trim(), 16).ok()).unwrap_or(0);
+    (1..=64).filter(|signal| mask & (1 << (signal - 1)) != 0).collect()
 }
 
 /// Makes HDF5 write without locks. A file is written under a name of its own before it is moved into

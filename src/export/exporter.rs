@@ -9,7 +9,7 @@ use super::source::MaskSource;
 use super::target::{Chosen, NoTarget, Targets, mask_owner};
 use super::usable_list::{list_owner, write_usable_list};
 use crate::flags::{
-    Campaign, Counts, FlagState, GranuleState, LedgerProblem, LedgerReading, Loss, Vocabulary,
+    Campaign, Counts, FlagState, GranuleState, LedgerProblem, LedgerReading, Vocabulary,
     read_ledgers,
 };
 use crate::granule::{Granule, GranuleError};
@@ -113,7 +113,7 @@ impl<'a> Exporter<'a> {
         let source = MaskSource::of(granule)?;
         let identity = granule_identity(granule)?;
         let reading = read_ledgers(self.campaign, &identity);
-        if let Some(problem) = reading.problems.iter().find(|problem| problem.loss == Loss::File) {
+        if let Some(problem) = reading.problems.iter().find(|problem| problem.loss.is_of_a_file()) {
             return Err(NotExported::Ledger(problem.to_string()));
         }
         let vocabulary = &self.campaign.settings().vocabulary;

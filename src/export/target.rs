@@ -79,12 +79,13 @@ impl Targets {
         let mut why = None;
         for name in &names {
             let path = self.folder.join(format!("{name}{}", self.ending));
+            // Asked first: what comes between then is found by placing, not replaced.
+            let there = std::fs::symlink_metadata(&path).is_ok();
             match self.obstacle(&path, input, source, &owner) {
                 None => {
                     self.taken.insert(path.clone(), input.to_owned());
                     let shown = path.file_name().unwrap_or_default().to_string_lossy();
                     let note = why.map(|why| format!("{why}; written as {shown}"));
-                    let there = std::fs::symlink_metadata(&path).is_ok();
                     let placing = if there { Placing::Over } else { Placing::New };
                     return Ok(Chosen { path, placing, note });
                 }

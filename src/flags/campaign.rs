@@ -67,6 +67,9 @@ pub enum CampaignError {
         /// What the system says.
         source: io::Error,
     },
+    /// Decisions about the granule count its footprints otherwise.
+    #[error("{0}")]
+    OtherFootprints(String),
     /// The settings make no sense.
     #[error("{path}: {what}")]
     Settings {

@@ -28,6 +28,16 @@ pub enum Loss {
     Line,
     /// A whole file of decisions: flags made without them would mislead.
     File,
+    /// A whole file of decisions about footprints that are counted otherwise: none may be added until
+    /// the granule is read as it was then.
+    OtherFootprints,
+}
+
+impl Loss {
+    /// Whether a whole file does not count.
+    pub fn is_of_a_file(self) -> bool {
+        matches!(self, Self::File | Self::OtherFootprints)
+    }
 }
 
 /// Something in a ledger that could not be taken as it stands.
@@ -117,7 +127,7 @@ struct Gathering {
 impl Gathering {
     fn problem(&mut self, path: &Path, line: u64, what: String, loss: Loss) {
         let what = clean_text(&what);
-        if self.problems.len() >= MOST_PROBLEMS && loss != Loss::File {
+        if self.problems.len() >= MOST_PROBLEMS && !loss.is_of_a_file() {
             self.unlisted += 1;
             return;
         }
@@ -230,7 +240,7 @@ impl Gathering {
                 dimensions(granule),
                 read_with(then)
             );
-            self.problem(path, 1, what, Loss::File);
+            self.problem(path, 1, what, Loss::OtherFootprints);
         } else if then.read_with != granule.read_with {
             let what = format!(
                 "was made with the granule read otherwise{}; its decisions count",

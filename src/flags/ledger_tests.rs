@@ -352,7 +352,7 @@ fn a_ledger_over_other_dimensions_does_not_count_and_one_read_otherwise_is_told(
     std::fs::write(&path, turned).unwrap();
     let reading = fixture.read();
     assert_eq!(reading.decisions, []);
-    assert_eq!(reading.problems[0].loss, Loss::File);
+    assert_eq!(reading.problems[0].loss, Loss::OtherFootprints);
     assert!(reading.problems[0].what.contains("position 4, line 5"), "{}", reading.problems[0]);
     let otherwise =
         text.replacen(r#""footprints""#, r#""read_with":["flip.toml"],"footprints""#, 1);

@@ -16,6 +16,11 @@ impl Plane {
         Self { flags: vec![0; footprints], spoken: vec![0; footprints] }
     }
 
+    /// A plane without flags, about which persons have spoken as about this one.
+    pub(super) fn without_flags(&self) -> Self {
+        Self { flags: vec![0; self.flags.len()], spoken: self.spoken.clone() }
+    }
+
     /// Sets a flag: a person anywhere, a test (which hands in `settled`) where no person spoke.
     pub(super) fn flag(&mut self, run: Range<usize>, bit: u32, settled: Option<&Vec<bool>>) {
         let flags = self.flags[run.clone()].iter_mut();

@@ -341,6 +341,6 @@ fn plane<'p>(
     if bands.len() >= MOST_BANDS && !bands.contains_key(name) {
         return None;
     }
-    let footprints = whole.flags.len();
-    Some(bands.entry(name.to_owned()).or_insert_with(|| Plane::new(footprints)))
+    // A person's word about the whole footprint holds in bands of which nobody has spoken, too.
+    Some(bands.entry(name.to_owned()).or_insert_with(|| whole.without_flags()))
 }

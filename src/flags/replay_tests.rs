@@ -214,6 +214,20 @@ fn a_flag_alone_makes_nothing_usable() {
 }
 
 #[test]
+fn a_persons_word_about_the_whole_holds_in_bands_that_tests_name_later() {
+    let mut story = Story::default();
+    story.anna(assess(&[0]));
+    story.test(flag("bad_spectrum", &[1]));
+    story.anna(withdraw("bad_spectrum", &[1]));
+    story.test(Act::Flag {
+        flag: "bad_spectrum".to_owned(),
+        footprints: set(&[0, 1, 2]),
+        bands: Some(vec!["short_wave".to_owned()]),
+    });
+    assert_eq!(story.state().band_flags["short_wave"][..3], [0, 0, 1 << 4]);
+}
+
+#[test]
 fn a_flag_in_every_band_is_one_of_the_whole_footprint() {
     let mut story = Story::default();
     let lost = |band: &str, footprints: &[usize]| Act::Flag {

@@ -38,7 +38,7 @@ pub use producer::{Producer, Rejection};
 pub use record::Record;
 pub use reference_spectrum::ReferenceSpectrum;
 pub use review::Review;
-pub use rulebook_of::{NoRulebook, rulebook_name, rulebook_of};
+pub use rulebook_of::{NoRulebook, name_of, rulebook_name, rulebook_of};
 pub use rulings::{Ruled, has_suggestion};
 pub use spectrum::{BandSpectrum, Spectrum};
 pub use spot_sample::{Judgement, SpotSample, draw_sample};

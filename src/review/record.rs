@@ -7,7 +7,7 @@ use jiff::Timestamp;
 
 use crate::flags::{
     Act, Author, Campaign, CampaignError, Counts, Decision, DecisionId, FlagState, GranuleIdentity,
-    LedgerEvent, LedgerReading, LedgerWriter, NotKept, Origin, OwnTimes, Replay, SpotCheck,
+    LedgerEvent, LedgerReading, LedgerWriter, Loss, NotKept, Origin, OwnTimes, Replay, SpotCheck,
     Vocabulary, own_times, read_ledgers, standing,
 };
 
@@ -41,6 +41,10 @@ impl Record {
         now: Timestamp,
     ) -> Result<Record, CampaignError> {
         let LedgerReading { decisions, problems, .. } = read_ledgers(campaign, &identity);
+        // Decisions by two ways of counting footprints would keep each other from counting.
+        if let Some(other) = problems.iter().find(|one| one.loss == Loss::OtherFootprints) {
+            return Err(CampaignError::OtherFootprints(other.to_string()));
+        }
         let mut writer = LedgerWriter::start(campaign, &identity, author, program, now)?;
         writer.saw(&decisions);
         let footprints = identity.footprint_count();

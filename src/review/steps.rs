@@ -1,13 +1,20 @@
 //! Steps in which a person decides about several granules at once, taken back and put back as one.
 
+use std::sync::atomic::{AtomicU64, Ordering};
+
 use jiff::Timestamp;
 
 use super::{Record, Refusal};
 use crate::flags::{Author, of_step, own_steps};
 
+/// How many steps this program has named.
+static STEPS: AtomicU64 = AtomicU64::new(0);
+
 /// A name for a step that nobody else gives.
 pub fn step_name(author: &Author, now: Timestamp) -> String {
-    format!("{}-{}-{}-{now}", author.person, author.host, author.process)
+    // The clock may stand still.
+    let number = STEPS.fetch_add(1, Ordering::Relaxed);
+    format!("{}-{}-{}-{number}-{now}", author.person, author.host, author.process)
 }
 
 impl Record {

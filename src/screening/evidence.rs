@@ -148,7 +148,7 @@ fn name<S: Serializer>(verdict: &Verdict, serializer: S) -> Result<S::Ok, S::Err
 }
 
 fn present(value: f64) -> Option<f64> {
-    (!value.is_nan()).then_some(value)
+    value.is_finite().then_some(value)
 }
 
 impl Screened {

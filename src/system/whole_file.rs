@@ -175,7 +175,12 @@ pub fn make_folder(folder: &Path) -> io::Result<()> {
     let missing = folder.ancestors().take_while(|one| !one.as_os_str().is_empty() && !one.exists());
     let parents: Vec<&Path> = missing.map(folder_of).collect();
     std::fs::create_dir_all(folder)?;
-    parents.into_iter().try_for_each(sync_folder)
+    // A folder in which one may make but not look cannot be synced; the new ones are there all the same.
+    let synced = |parent: &Path| match sync_folder(parent) {
+        Err(error) if error.kind() == io::ErrorKind::PermissionDenied => Ok(()),
+        result => result,
+    };
+    parents.into_iter().try_for_each(synced)
 }
 
 /// Waits until the disk has the names in `folder`: a new file is kept only when its name is.

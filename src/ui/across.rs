@@ -169,15 +169,25 @@ pub fn others(app: &App) -> Vec<usize> {
 
 /// Takes what one granule brought.
 pub fn take(app: &mut App, request: u64, entry: usize, found: Result<Brought, String>) -> Vec<Job> {
+    let on_table = app.bench().is_some_and(|bench| bench.entry == entry);
     let Some(across) = app.across.as_mut().filter(|across| across.request == request) else {
-        return Vec::new();
+        // It was ended meanwhile; what was decided before is on the disk all the same.
+        return match found {
+            Ok(Brought::Decided(_)) if on_table => turning::look_for_others(app),
+            Ok(Brought::Decided(standing)) => {
+                app.tray.set_standing(entry, *standing);
+                Vec::new()
+            }
+            _ => Vec::new(),
+        };
     };
     across.done += 1;
     let over = across.done >= across.all;
+    let mut jobs = Vec::new();
     match found {
         Ok(Brought::Compared(granule)) => spreading::compared(app, entry, granule),
-        // What the open record says is newer.
-        Ok(Brought::Decided(_)) if app.bench().is_some_and(|bench| bench.entry == entry) => {}
+        // It was opened meanwhile, perhaps before that was decided.
+        Ok(Brought::Decided(_)) if on_table => jobs.extend(turning::look_for_others(app)),
         Ok(Brought::Decided(standing)) => app.tray.set_standing(entry, *standing),
         Err(why) => {
             let name = app.tray.entry(entry).map(|entry| entry.name.clone()).unwrap_or_default();
@@ -186,7 +196,10 @@ pub fn take(app: &mut App, request: u64, entry: usize, found: Result<Brought, St
             }
         }
     }
-    if over { finish(app) } else { Vec::new() }
+    if over {
+        jobs.extend(finish(app));
+    }
+    jobs
 }
 
 /// An errand ended in a fault of the program.

@@ -2,7 +2,7 @@
 
 use std::path::PathBuf;
 
-use crate::review::rulebook_name;
+use crate::review::{name_of, rulebook_name};
 use crate::tray::{Offer, Standing};
 
 use super::across::{self, Errand};
@@ -13,6 +13,7 @@ use super::jobs::Job;
 use super::key::{Code, Key};
 use super::overlay::Overlay;
 use super::owed;
+use super::screening;
 use super::turning;
 use super::update::is_yes;
 
@@ -66,6 +67,13 @@ fn screen(app: &mut App, offer: &Offer) -> Vec<Job> {
             app.say("the tests have not run over the granule on the table yet");
             return Vec::new();
         };
+        let in_force = rulebook_name(&app.outside.campaign).ok();
+        if in_force.is_none_or(|in_force| in_force != name_of(&screened.rulebook)) {
+            app.say(
+                "the rulebook has changed: the tests run anew over the granule on the table first",
+            );
+            return screening::start(app);
+        }
         let done = deciding::decided(app, |record, now| {
             record.tests_decide(&screened, now).map(|_| "what the tests say is written".to_owned())
         });

@@ -147,12 +147,13 @@ fn previous_case(app: &mut App) -> Vec<Job> {
 /// whichever key decided it.
 pub fn go_on(app: &mut App, decided: &FootprintSet) -> Vec<Job> {
     let Some(bench) = app.bench_mut() else { return Vec::new() };
-    let Some(worst) = bench.doubt.in_hand.take_if(|worst| decided.contains(*worst)) else {
+    let Some(worst) = bench.doubt.in_hand.filter(|worst| decided.contains(*worst)) else {
         return Vec::new();
     };
     if bench.doubt.cases.iter().any(|case| case.footprints.contains(worst)) {
         return Vec::new();
     }
+    bench.doubt.in_hand = None;
     let (said, tone) = app.message.clone();
     let jobs = next_case(app);
     // What was decided stands behind what is to be decided next.

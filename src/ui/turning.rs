@@ -189,7 +189,7 @@ pub fn keep_place(app: &App) -> Vec<Job> {
 pub fn leave(app: &mut App) -> Vec<Job> {
     let again = std::mem::replace(&mut app.leaving, true);
     leave_if_done(app);
-    if again && app.ended.is_none() && !app.owed.is_empty() {
+    if again && app.ended.is_none() {
         app.overlay = Overlay::LeaveAnyway;
     }
     if app.ended.is_none() && !matches!(app.overlay, Overlay::LeaveAnyway) {

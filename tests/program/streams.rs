@@ -121,3 +121,25 @@ fn a_signal_ends_a_command_and_removes_what_is_half_written() {
     assert_eq!(child.wait().unwrap().signal(), Some(15));
     assert_eq!(parts(), 0);
 }
+
+#[test]
+fn a_signal_that_is_to_be_ignored_ends_nothing() {
+    let folder = tempfile::tempdir().unwrap();
+    let mut shell = Command::new("sh");
+    shell.args(["-c", r#"trap "" TERM HUP; exec "$0" synth --scene norrik-plateau --out out"#]);
+    shell.arg(env!("CARGO_BIN_EXE_radsieve")).current_dir(folder.path());
+    let mut child = shell.stdout(Stdio::null()).stderr(Stdio::null()).spawn().unwrap();
+    let begun = Instant::now();
+    while !folder.path().join("out").exists() && begun.elapsed() < Duration::from_secs(120) {
+        std::thread::sleep(Duration::from_millis(5));
+    }
+    let pid = rustix::process::Pid::from_raw(child.id() as i32).unwrap();
+    // It may be done already.
+    let _ = rustix::process::kill_process(pid, rustix::process::Signal::TERM);
+    let _ = rustix::process::kill_process(pid, rustix::process::Signal::HUP);
+    assert_eq!(child.wait().unwrap().code(), Some(0));
+    let names = std::fs::read_dir(folder.path().join("out")).unwrap();
+    let names: Vec<String> =
+        names.map(|one| one.unwrap().file_name().into_string().unwrap()).collect();
+    assert!(names.len() == 1 && names[0].ends_with(".nc"), "{names:?}");
+}

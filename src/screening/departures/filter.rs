@@ -46,10 +46,17 @@ pub fn find(departures: &[f64]) -> Option<Found> {
         growth > GRADIENT * (low - high) as f64
     };
     let growing = || (0..smooth.len()).filter(|rank| grows(*rank));
-    Some(Found {
-        first: growing().find(|rank| smooth[*rank].abs() > DEPARTURE),
-        largest: growing().map(|rank| smooth[rank].abs()).fold(0.0, f64::max),
-    })
+    let first = growing().find(|rank| smooth[*rank].abs() > DEPARTURE);
+    // Cloud that only missing ranks would show is not ruled out.
+    let is_told = |rank: usize| {
+        let around = window(rank, smooth.len());
+        !smooth[around.start].is_nan() && !smooth[around.end - 1].is_nan()
+    };
+    let lowest = smooth.len() / 2..smooth.len();
+    if first.is_none() && !lowest.clone().all(is_told) {
+        return None;
+    }
+    Some(Found { first, largest: growing().map(|rank| smooth[rank].abs()).fold(0.0, f64::max) })
 }
 
 #[cfg(test)]
@@ -113,5 +120,18 @@ mod tests {
             .map(|(at, one)| if at < 32 { f64::NAN } else { *one })
             .collect();
         assert_eq!(find(&lost), None);
+    }
+
+    #[test]
+    fn what_only_missing_ranks_would_show_is_not_ruled_out() {
+        let clear = vec![0.05; 60];
+        assert_eq!(find(&clear).map(|found| found.first), Some(None));
+        let no_window: Vec<f64> = (0..60).map(|at| if at < 42 { 0.05 } else { f64::NAN }).collect();
+        assert_eq!(find(&no_window), None);
+        // Cloud that is seen higher up stays seen.
+        let high: Vec<f64> = (0..60)
+            .map(|at| if at < 42 { -0.2 * f64::from((at - 20).max(0)) } else { f64::NAN })
+            .collect();
+        assert!(find(&high).is_some_and(|found| found.first.is_some()));
     }
 }

@@ -204,8 +204,8 @@ fn channels_are_clear_or_affected_each_for_itself() {
     let ranked = Rankings::default().of(&names());
     let (high, low) = (ranked[0].channel, ranked[ranked.len() - 1].channel);
     let affected = |channel: &Channel| {
-        let (columns, _) =
-            made(3.0, 0.8).run(RankedChannels::shared(), &channels(&ranked), Some(channel));
+        let taken = [&channels(&ranked)[..], &[*channel]].concat();
+        let (columns, _) = made(3.0, 0.8).run(RankedChannels::shared(), &taken, Some(channel));
         columns[0].clone()
     };
     let (above, below) = (affected(&high), affected(&low));

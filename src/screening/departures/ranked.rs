@@ -71,6 +71,7 @@ impl RankedChannels {
         channel: &Channel,
         found: &[Option<Found>],
         ranked: &[Ranked],
+        departures: &[f64],
     ) -> Vec<f64> {
         let pressures = self.rankings.pressures(std::slice::from_ref(channel), names);
         // What sees no cloud at all is affected by none.
@@ -79,7 +80,10 @@ impl RankedChannels {
         let value = |found: &Option<Found>| {
             found.as_ref().map_or(f64::NAN, |found| f64::from(u8::from(affected(found))))
         };
-        found.iter().map(value).collect()
+        // Of a footprint whose own value in the channel is missing nothing is said.
+        let departures = departures.iter();
+        let both = found.iter().zip(departures);
+        both.map(|(found, own)| if own.is_nan() { f64::NAN } else { value(found) }).collect()
     }
 }
 
@@ -92,13 +96,14 @@ impl Retrieval for RankedChannels {
         &[("cloud_affected", LayerUnit::Truth)]
     }
 
-    fn inputs(&self, names: &dyn Names, _: Option<&Channel>) -> Vec<Input> {
+    fn inputs(&self, names: &dyn Names, channel: Option<&Channel>) -> Vec<Input> {
         let mut inputs = common_inputs();
         // Without calculated spectra nothing more is asked for, and no ranking is worked out.
         let window = names.channel_near(900.3);
         if window.is_ok_and(|channel| names.calculates(&channel).is_ok()) {
             let ranked = self.rankings.of(names);
             inputs.extend(ranked.iter().flat_map(|one| pair_of(&one.channel)));
+            inputs.extend(channel.into_iter().flat_map(pair_of));
         }
         inputs
     }
@@ -123,7 +128,10 @@ impl Retrieval for RankedChannels {
         }
         let (found, notes) = self.found(names, inputs, &ranked);
         let columns = match channel {
-            Some(channel) => vec![self.affected(names, channel, &found, &ranked)],
+            Some(channel) => {
+                let own = difference(inputs, COMMON + 2 * ranked.len());
+                vec![self.affected(names, channel, &found, &ranked, &own)]
+            }
             None => columns(&found, &ranked),
         };
         Retrieved { columns, notes }

@@ -31,7 +31,8 @@ pub struct Ranked {
     pub pressure: f64,
 }
 
-type Known = (Vec<Channel>, Arc<Vec<Ranked>>);
+/// Channels with their widths, cm-1, and what was worked out of them.
+type Known = (Vec<(Channel, f64)>, Arc<Vec<Ranked>>);
 
 /// Rankings that have been worked out, one for each set of channels.
 #[derive(Debug, Default)]
@@ -49,18 +50,19 @@ impl Rankings {
     /// below the stratosphere does.
     pub fn pressures(&self, channels: &[Channel], names: &dyn Names) -> Arc<Vec<Ranked>> {
         let lock = || self.0.lock().unwrap_or_else(PoisonError::into_inner);
-        if let Some((_, known)) = lock().iter().find(|(known, _)| known == channels) {
+        let wanted: Vec<(Channel, f64)> =
+            channels.iter().map(|channel| (*channel, width(channel, names))).collect();
+        if let Some((_, known)) = lock().iter().find(|(known, _)| *known == wanted) {
             return Arc::clone(known);
         }
         // Worked out while the lock is open: the work is shared among threads, and one that waits for
         // its share may take up another granule, which asks for the same lock.
-        let widths = channels.iter().map(|channel| width(channel, names));
-        let found = lowest_clouds(channels.iter().map(|one| one.wavenumber).zip(widths));
+        let found = lowest_clouds(wanted.iter().map(|(one, width)| (one.wavenumber, *width)));
         let ranked = channels.iter().zip(found);
         let ranked: Vec<Ranked> =
             ranked.map(|(channel, pressure)| Ranked { channel: *channel, pressure }).collect();
         let ranked = Arc::new(ranked);
-        lock().push((channels.to_vec(), Arc::clone(&ranked)));
+        lock().push((wanted, Arc::clone(&ranked)));
         ranked
     }
 }

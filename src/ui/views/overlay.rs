@@ -165,7 +165,9 @@ fn draw_flags(app: &App, flags: &FlagPrompt, screen: Rect, buffer: &mut Buffer) 
 
 fn leave_lines(app: &App) -> Vec<String> {
     if app.pending() == 0 {
-        let words = format!("still {}", app.owed.words());
+        let under_way =
+            app.across.as_ref().map_or_else(|| app.owed.words(), |across| across.words());
+        let words = format!("still {under_way}");
         return vec![words, "y: leave and lose it   n: stay".to_owned()];
     }
     let mut lines = vec![format!("{} decisions could not be written:", app.pending())];
