@@ -135,6 +135,7 @@ def some_decisions(described):
         person.append({"act": "flag", "flag": "bad_spectrum", "footprints": [[20, 3]],
                        "bands": [band]})
     person.append({"test": "a test", "act": "flag", "flag": "cloudy", "footprints": [[11, 3]]})
+    person.append({"test": "a test", "act": "assess", "footprints": [[11, 3]]})
     person.append({"act": "sign_off", "summary": "checked", "rest_assessed": [[14, count - 15]]})
     return person
 
