@@ -12,6 +12,7 @@ mod output;
 
 mod describe;
 mod exit;
+mod expand;
 mod export;
 mod footprint_at;
 mod heights;
