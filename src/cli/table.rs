@@ -33,25 +33,16 @@ pub struct Heading {
     longitude: Option<String>,
 }
 
-/// The name of a column; another one where the file has a dimension of that name, whose indices stand
-/// under it.
-pub fn beside(dimensions: &[String], name: &str) -> String {
-    match dimensions.iter().any(|dimension| dimension == name) {
-        true => format!("{name}_of_footprint"),
-        false => name.to_owned(),
-    }
-}
-
 impl Heading {
     /// What a granule has; `file` where several files share the table.
     pub fn of(granule: &Granule, file: bool) -> Self {
-        let (place, dimensions) = (granule.geolocation(), granule.footprints().names());
-        let column = |there: bool, name: &str| there.then(|| beside(dimensions, name));
+        let (place, grid) = (granule.geolocation(), granule.footprints());
+        let column = |there: bool, name: &str| there.then(|| grid.column(name));
         Self {
             file: column(file, "file"),
             latitude: column(place.latitude.is_some(), "lat"),
             longitude: column(place.longitude.is_some(), "lon"),
-            dimensions: dimensions.to_vec(),
+            dimensions: grid.names().to_vec(),
         }
     }
 
@@ -179,22 +170,22 @@ impl Serialize for Row<'_> {
         // Each line names what its own granule has.
         let dimensions = self.grid.names();
         if self.heading.file.is_some() {
-            row.serialize_entry(&beside(dimensions, "file"), self.file)?;
+            row.serialize_entry(&self.grid.column("file"), self.file)?;
         }
         for (name, index) in dimensions.iter().zip(self.grid.position(self.footprint)) {
             row.serialize_entry(name, &index)?;
         }
         for (name, field) in [("lat", &self.place.latitude), ("lon", &self.place.longitude)] {
             if field.is_some() {
-                row.serialize_entry(&beside(dimensions, name), &present(self.value(field)))?;
+                row.serialize_entry(&self.grid.column(name), &present(self.value(field)))?;
             }
         }
         for (at, layer) in self.layers.iter().enumerate() {
             // A key must not come twice: `lat` may be asked for and is there already.
             let there = |name: &str| name == layer.expression;
             let known = dimensions.iter().any(|name| there(name))
-                || (there(&beside(dimensions, "lat")) && self.place.latitude.is_some())
-                || (there(&beside(dimensions, "lon")) && self.place.longitude.is_some())
+                || (there(&self.grid.column("lat")) && self.place.latitude.is_some())
+                || (there(&self.grid.column("lon")) && self.place.longitude.is_some())
                 || self.layers[..at].iter().any(|before| there(&before.expression));
             if !known {
                 row.serialize_entry(&layer.expression, &present(layer.values[self.footprint]))?;
@@ -275,9 +266,10 @@ mod tests {
 
     #[test]
     fn a_dimension_keeps_its_name_and_a_column_gives_way() {
-        let dimensions = ["lat".to_owned(), "lon".to_owned()];
-        assert_eq!(beside(&dimensions, "lat"), "lat_of_footprint");
-        assert_eq!(beside(&dimensions, "file"), "file");
+        let names = vec!["lat".to_owned(), "lon".to_owned()];
+        let grid = FootprintGrid::new(names, vec![2, 3]);
+        assert_eq!(grid.column("lat"), "lat_of_footprint");
+        assert_eq!(grid.column("file"), "file");
     }
 
     #[test]

@@ -38,7 +38,7 @@ pub fn write_usable_list(
     let grid = FootprintGrid::new(names, lengths);
     place_whole(target, placing, |temporary| {
         let mut csv = csv::Writer::from_path(temporary)?;
-        csv.write_record(header(source))?;
+        csv.write_record(header(source, &grid))?;
         for &footprint in &usable {
             csv.write_record(row(source, record, &grid, footprint))?;
         }
@@ -47,16 +47,10 @@ pub fn write_usable_list(
     Ok(usable.len())
 }
 
-fn header(source: &MaskSource) -> Vec<String> {
-    let mut header: Vec<String> = source.footprints.iter().map(|(name, _)| name.clone()).collect();
-    let is_there = |name: &str| source.footprints.iter().any(|(dimension, _)| dimension == name);
-    // A dimension keeps its name, as in tables.
-    let column = |name: &str| match is_there(name) {
-        true => format!("{name}_of_footprint"),
-        false => name.to_owned(),
-    };
-    header.extend(source.latitude.iter().map(|_| column("lat")));
-    header.extend(source.longitude.iter().map(|_| column("lon")));
+fn header(source: &MaskSource, grid: &FootprintGrid) -> Vec<String> {
+    let mut header: Vec<String> = grid.names().to_vec();
+    header.extend(source.latitude.iter().map(|_| grid.column("lat")));
+    header.extend(source.longitude.iter().map(|_| grid.column("lon")));
     header.extend(["bands_lost".to_owned(), OWNER.to_owned()]);
     header
 }

@@ -13,6 +13,15 @@ impl FootprintGrid {
         Self { names, lengths }
     }
 
+    /// The name of a table's column beside those of the indices: another one where a dimension has that
+    /// name, for the indices stand under it.
+    pub fn column(&self, name: &str) -> String {
+        match self.names.iter().any(|dimension| dimension == name) {
+            true => format!("{name}_of_footprint"),
+            false => name.to_owned(),
+        }
+    }
+
     /// The dimensions' names in the file, slowest first.
     pub fn names(&self) -> &[String] {
         &self.names

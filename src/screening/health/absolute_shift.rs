@@ -1,11 +1,11 @@
 //! The spectral shift of each detector against calculated clear spectra, on lines of CO2.
 
 use super::detectors::ChannelGroup;
-use super::finding::{Check, Finding, Limit, Subject};
+use super::finding::{Check, Finding};
 use super::grid::ScanGrid;
 use super::limits::HealthLimits;
 use super::readings::BandReadings;
-use super::shift::{DetectorShift, Lines, PARTS, SURE, deviation_of_mean};
+use super::shift::{DetectorShift, Lines, PARTS, beyond_limit, deviation_of_mean};
 use crate::granule::Granule;
 use crate::spectral::{ShiftReference, planck};
 
@@ -139,16 +139,6 @@ pub fn absolutely_shifted(
     shifts: &[DetectorShift],
     limits: &HealthLimits,
 ) -> Vec<Finding> {
-    let limit = Limit::of(limits, "shift");
-    let beyond = shifts
-        .iter()
-        .filter(|one| one.ppm.abs() > limit.value && one.ppm.abs() > SURE * one.deviation);
-    beyond
-        .map(|one| {
-            let (subject, band) = (Subject::Detector(one.detector), Some(readings.number));
-            let finding = limit.finding(Check::AbsoluteShift, subject, band, one.ppm);
-            let deviation = one.deviation;
-            finding.saying(format!("± {deviation:.1} ppm, against calculated clear spectra"))
-        })
-        .collect()
+    let against = "against calculated clear spectra";
+    beyond_limit(readings, shifts, limits, Check::AbsoluteShift, against)
 }

@@ -15,7 +15,7 @@ const STRETCHES: [(f64, f64); 3] = [(690.0, 765.0), (2190.0, 2260.0), (2375.0, 2
 /// Parts of the granule, along the flight: what the shift differs by between them is its uncertainty.
 pub const PARTS: usize = 6;
 /// A shift must be this many times its own uncertainty.
-pub const SURE: f64 = 4.0;
+const SURE: f64 = 4.0;
 
 /// A detector's shift with its uncertainty, ppm.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -117,11 +117,22 @@ fn shifts(lines: &Lines, sums: &LineSums) -> Vec<Option<SpectralShift>> {
     means.iter().map(|mean| reference.shift_of(mean, &noise)).collect()
 }
 
-/// Shifts beyond the limit.
+/// Shifts beyond the limit, relative to the mean of the detectors.
 pub fn shifted_detectors(
     readings: &BandReadings<'_>,
     shifts: &[DetectorShift],
     limits: &HealthLimits,
+) -> Vec<Finding> {
+    beyond_limit(readings, shifts, limits, Check::Shift, "relative to the mean of the detectors")
+}
+
+/// Shifts beyond the limit as findings of a check, each with its error and `against` what it was found.
+pub fn beyond_limit(
+    readings: &BandReadings<'_>,
+    shifts: &[DetectorShift],
+    limits: &HealthLimits,
+    check: Check,
+    against: &str,
 ) -> Vec<Finding> {
     let limit = Limit::of(limits, "shift");
     let beyond = shifts
@@ -130,11 +141,8 @@ pub fn shifted_detectors(
     beyond
         .map(|one| {
             let (subject, band) = (Subject::Detector(one.detector), Some(readings.number));
-            let finding = limit.finding(Check::Shift, subject, band, one.ppm);
-            finding.saying(format!(
-                "± {:.1} ppm, relative to the mean of the detectors",
-                one.deviation
-            ))
+            let finding = limit.finding(check, subject, band, one.ppm);
+            finding.saying(format!("± {:.1} ppm, {against}", one.deviation))
         })
         .collect()
 }
